@@ -27,7 +27,7 @@ struct InputRequest {
   std::string stiffness;
   std::optional<std::string> geometric, mass;
   std::vector<AddedMatrix> added;
-  std::optional<std::string> dofs, nodes, fix, multipliers;
+  std::optional<std::string> dofs, nodes, axes, fix, multipliers;
   bool load_sign_minus = false;  ///< the second matrix was written for K - f G
   bool symmetric_part = false;
   bool strike_held = false;

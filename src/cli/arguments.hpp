@@ -1,0 +1,55 @@
+// The options of one command, declared by name with where their values go. The argument parser itself is used
+// in command_line.cpp only.
+#pragma once
+
+#include <cstdint>
+#include <functional>
+#include <memory>
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "stanchion/status.hpp"
+
+namespace stanchion::cli {
+
+/// Every target must outlive the parse. Options have one spelling each and are never abbreviated.
+class Arguments {
+ public:
+  struct Parser;
+  explicit Arguments(std::unique_ptr<Parser> parser);
+  ~Arguments();
+
+  /// Options declared from here on appear under this title in the help.
+  void group(const std::string& title);
+
+  void positional(const std::string& name, std::optional<std::string>& target, const std::string& help);
+  void flag(const std::string& name, bool& target, const std::string& help);
+  void text(const std::string& name, std::optional<std::string>& target, const std::string& value,
+            const std::string& help);
+  /// May be given several times.
+  void texts(const std::string& name, std::vector<std::string>& target, const std::string& value,
+             const std::string& help);
+  void real(const std::string& name, std::optional<double>& target, const std::string& value,
+            const std::string& help);
+  void whole(const std::string& name, std::optional<std::int64_t>& target, const std::string& value,
+             const std::string& help);
+  /// Printed below the options.
+  void closing(const std::string& text);
+
+  /// Turns the texts given for `real` and `whole` options into numbers; the first that is none is the
+  /// failure.
+  Status convert_numbers() const;
+
+ private:
+  std::unique_ptr<Parser> parser_;
+  std::vector<std::function<Status()>> conversions_;
+};
+
+/// `text` as a finite number, all of it; bad usage ("bad-number") naming `option` otherwise.
+Result<double> parse_real(const std::string& option, const std::string& text);
+
+/// `text` as a whole number, all of it; bad usage ("bad-number") naming `option` otherwise.
+Result<std::int64_t> parse_whole(const std::string& option, const std::string& text);
+
+}  // namespace stanchion::cli

@@ -1,0 +1,33 @@
+// One command of the program: its options, and what it does once they are known.
+#pragma once
+
+#include <memory>
+#include <string>
+#include <vector>
+
+#include "cli/arguments.hpp"
+
+namespace stanchion::cli {
+
+/// What every command gets from the call of the program.
+struct Call {
+  std::vector<std::string> arguments;  ///< as typed, without the program's own name
+};
+
+class Command {
+ public:
+  virtual ~Command() = default;
+  virtual const char* name() const = 0;
+  virtual const char* summary() const = 0;
+  virtual void declare(Arguments& arguments) = 0;
+  /// Does the work and prints; returns the exit code, or the failure for the caller to print.
+  virtual Result<int> run(const Call& call) = 0;
+};
+
+std::unique_ptr<Command> make_check_command();
+std::unique_ptr<Command> make_count_command();
+std::unique_ptr<Command> make_forecast_command();
+std::unique_ptr<Command> make_specimen_command();
+std::unique_ptr<Command> make_convert_command();
+
+}  // namespace stanchion::cli

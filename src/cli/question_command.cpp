@@ -1,0 +1,103 @@
+#include "cli/question_command.hpp"
+
+#include "cli/interrupt.hpp"
+#include "cli/log_file.hpp"
+#include "cli/output_file.hpp"
+#include "cli/progress_line.hpp"
+#include "cli/terminal.hpp"
+#include "model/exit_code.hpp"
+#include "model/names.hpp"
+#include "report/json.hpp"
+#include "report/text.hpp"
+
+namespace stanchion::cli {
+namespace {
+
+void declare_output_options(Arguments& arguments, OutputOptions& options) {
+  arguments.group("Output");
+  arguments.text("--expect", options.expectation, "WHAT",
+                 "positive-definite, zero:N or negative:N; exit 1 if not");
+  arguments.text("--json", options.json, "FILE",
+                 "the whole answer as JSON; - for standard output, nothing else");
+  arguments.flag("--quiet", options.quiet, "no text on standard output, no progress line");
+  arguments.text("--log", options.log, "FILE", "one line a stage; - for standard error");
+  arguments.text("--title", options.title, "TEXT", "printed above the answer");
+  arguments.text("--reference", options.reference, "TEXT", "your own reference, printed above the answer");
+}
+
+Result<Judgement> build_judgement(const OutputOptions& output, bool symmetric_part, Question question) {
+  Judgement judgement{symmetric_part, {}};
+  if (!output.expectation) return judgement;
+  const auto expectation = parse_expectation(*output.expectation);
+  if (!expectation.ok()) return expectation.status();
+  if (Status status = check_applicable(*expectation, question); !status.ok()) return status;
+  judgement.expectation = *expectation;
+  return judgement;
+}
+
+/// The JSON file, opened ahead of the work; nothing when no file was asked.
+Result<std::optional<OutputFile>> open_json_file(const OutputOptions& output) {
+  std::optional<OutputFile> file;
+  if (!output.json || *output.json == "-") return file;
+  auto opened = OutputFile::open("--json", *output.json);
+  if (!opened.ok()) return opened.status();
+  file = std::move(*opened);
+  return file;
+}
+
+Status deliver(const Outcome& outcome, const OutputOptions& output, std::optional<OutputFile>& json_file) {
+  if (json_file) {
+    if (Status status = json_file->commit(to_json(outcome)); !status.ok()) return status;
+  }
+  if (output.json == "-") return print_result(to_json(outcome));
+  if (output.quiet) return {};
+  return print_result(to_text(outcome));
+}
+
+}  // namespace
+
+const char* QuestionCommand::name() const {
+  return name_of(question_);
+}
+
+void QuestionCommand::declare(Arguments& arguments) {
+  declare_request_options(arguments, request_, question_);
+  declare_output_options(arguments, output_);
+}
+
+Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log) const {
+  CancellationToken token;
+  const InterruptGuard guard(token);
+  // A log on the same terminal would be torn apart by the line.
+  ProgressLine line(standard_error_is_terminal() && !output_.quiet && !log.to_standard_error());
+  RunContext context;
+  context.cancel = &token;
+  context.progress = [&line](const char* stage, double fraction) { line.update(stage, fraction); };
+  context.log = [&log](const std::string& text) { log.line(text); };
+  return engine_(request, context);
+}
+
+Result<int> QuestionCommand::run(const Call& call) {
+  const auto request = build_request(request_, question_);
+  if (!request.ok()) return request.status();
+  const auto judgement = build_judgement(output_, request_.symmetric_part, question_);
+  if (!judgement.ok()) return judgement.status();
+  auto json_file = open_json_file(output_);
+  if (!json_file.ok()) return json_file.status();
+  const auto log = LogFile::open(output_.log);
+  if (!log.ok()) return log.status();
+
+  auto outcome = ask(*request, *log);
+  if (!outcome.ok()) {
+    log->line(outcome.status().to_string());
+    return outcome.status();
+  }
+  outcome->command = name();
+  outcome->arguments = call.arguments;
+  outcome->title = output_.title;
+  outcome->reference = output_.reference;
+  if (Status status = deliver(*outcome, output_, *json_file); !status.ok()) return status;
+  return exit_code(*outcome, *judgement);
+}
+
+}  // namespace stanchion::cli

@@ -1,0 +1,35 @@
+// What check, count and forecast have in common: options to a request, the request to the engine, the outcome
+// to the places asked, and the exit code.
+#pragma once
+
+#include "cli/command.hpp"
+#include "cli/request_options.hpp"
+#include "engine/pipeline.hpp"
+
+namespace stanchion::cli {
+
+/// Where the answer goes, as typed.
+struct OutputOptions {
+  std::optional<std::string> json, log, title, reference, expectation;
+  bool quiet = false;
+};
+
+class QuestionCommand : public Command {
+ public:
+  using Engine = Result<Outcome> (*)(const Request&, const RunContext&);
+  QuestionCommand(Question question, Engine engine) : question_(question), engine_(engine) {}
+
+  const char* name() const override;
+  void declare(Arguments& arguments) override;
+  Result<int> run(const Call& call) override;
+
+ private:
+  Result<Outcome> ask(const Request& request, const class LogFile& log) const;
+
+  Question question_;
+  Engine engine_;
+  RequestOptions request_;
+  OutputOptions output_;
+};
+
+}  // namespace stanchion::cli

@@ -1,0 +1,178 @@
+#include "cli/request_options.hpp"
+
+#include <fmt/format.h>
+
+#include <limits>
+
+#include "model/byte_size.hpp"
+#include "model/validate.hpp"
+
+namespace stanchion::cli {
+namespace {
+
+void declare_matrices(Arguments& arguments, RequestOptions& options, Question question) {
+  arguments.positional("K", options.stiffness, "the stiffness matrix; its format is found from its content");
+  arguments.group("Matrices");
+  if (question != Question::kCheck) {
+    arguments.text("--geometric", options.geometric, "FILE", "geometric stiffness G: the pencil K + f G");
+    arguments.text("--mass", options.mass, "FILE", "mass M, matrix or diagonal: the pencil K - s M");
+    arguments.text("--load-sign", options.load_sign, "plus|minus",
+                   "minus: G was written for K - f G (default plus)");
+  }
+  arguments.texts("--add", options.added, "FILE:factor",
+                  "add factor times this matrix to K (may be repeated)");
+  arguments.flag("--symmetric-part", options.symmetric_part,
+                 "judge (K + K^T)/2 of a matrix that is not symmetric");
+  arguments.whole("--base", options.base, "0|1", "number of the first equation in triplet text");
+  arguments.whole("--rows", options.rows, "N", "equations of a triplet text whose last rows are empty");
+}
+
+void declare_model_files(Arguments& arguments, RequestOptions& options) {
+  arguments.group("Model");
+  arguments.text("--dofs", options.dofs, "FILE", "equation,node,dof: what each equation stands for");
+  arguments.text("--nodes", options.nodes, "FILE", "node,x,y,z");
+  arguments.text("--axes", options.axes, "FILE", "node and nine direction cosines of its own axes");
+  arguments.text("--fix", options.fix, "FILE", "equations (or node,dof) held at zero: struck out first");
+  arguments.text("--multipliers", options.multipliers, "FILE",
+                 "equations (or node,dof) that are multipliers");
+  arguments.flag("--strike-held", options.strike_held,
+                 "strike out held equations stamped with a diagonal only");
+}
+
+void declare_numbers(Arguments& arguments, RequestOptions& options) {
+  arguments.group("Certificate");
+  arguments.real("--resolution", options.resolution, "c",
+                 "what counts as zero, in units of the scaled matrix");
+  arguments.real("--risk", options.risk, "p", "accepted failure probability of the document (default 1e-6)");
+  arguments.whole("--digits", options.digits, "d",
+                  "decimal digits in the file: their rounding joins the bound");
+  arguments.whole("--seed", options.seed, "N", "of the random vectors (default 1)");
+  arguments.group("Resources");
+  arguments.whole("--threads", options.threads, "N", "default: every processor available");
+  arguments.text("--memory-cap", options.memory_cap, "SIZE", "stop before using more, e.g. 8G or 512M");
+}
+
+/// FILE:factor, split at the last colon so that paths may hold colons.
+Result<AddedMatrix> parse_added(const std::string& text) {
+  const auto colon = text.rfind(':');
+  if (colon == std::string::npos || colon == 0) {
+    return Status::bad_usage("bad-added-matrix", fmt::format("'{}' names no file with a factor", text),
+                             "--add", "write --add FILE:factor, e.g. --add Gdead.mtx:1.35");
+  }
+  const auto factor = parse_real("--add", text.substr(colon + 1));
+  if (!factor.ok()) return factor.status();
+  return AddedMatrix{text.substr(0, colon), *factor};
+}
+
+/// Comma separated numbers of one --at.
+Status append_shifts(const std::string& list, std::vector<double>& shifts) {
+  std::size_t begin = 0;
+  for (;;) {
+    const auto comma = list.find(',', begin);
+    const auto length = comma == std::string::npos ? comma : comma - begin;
+    const auto shift = parse_real("--at", list.substr(begin, length));
+    if (!shift.ok()) return shift.status();
+    shifts.push_back(*shift);
+    if (comma == std::string::npos) return {};
+    begin = comma + 1;
+  }
+}
+
+/// A whole-number option into a narrower member; too large counts as out of range.
+template <class Member>
+Status narrow(const char* option, const std::optional<std::int64_t>& value, std::int64_t least,
+              Member& member) {
+  if (!value) return {};
+  if (*value < least || *value > std::numeric_limits<Index>::max()) {
+    return Status::bad_usage("out-of-range", fmt::format("{} is out of range", *value), option,
+                             fmt::format("give a whole number from {}", least));
+  }
+  member = static_cast<Index>(*value);
+  return {};
+}
+
+Status fill_numbers(const RequestOptions& options, Request& request) {
+  for (const Status& status : {narrow("--base", options.base, 0, request.input.base),
+                               narrow("--rows", options.rows, 1, request.input.rows),
+                               narrow("--digits", options.digits, 1, request.digits),
+                               narrow("--threads", options.threads, 1, request.threads)}) {
+    if (!status.ok()) return status;
+  }
+  if (options.seed) {
+    if (*options.seed < 0) {
+      return Status::bad_usage("out-of-range", "a seed cannot be negative", "--seed",
+                               "give a whole number from 0");
+    }
+    request.seed = static_cast<std::uint64_t>(*options.seed);
+  }
+  request.resolution = options.resolution;
+  if (options.risk) request.risk = *options.risk;
+  if (options.memory_cap) {
+    const auto bytes = parse_byte_size(*options.memory_cap);
+    if (!bytes.ok()) {
+      const Status& bad = bytes.status();
+      return Status::bad_usage(bad.code(), bad.message(), "--memory-cap", bad.remedy());
+    }
+    request.memory_cap_bytes = *bytes;
+  }
+  return {};
+}
+
+Status fill_input(const RequestOptions& options, InputRequest& input) {
+  input.stiffness = options.stiffness.value_or("");
+  input.geometric = options.geometric;
+  input.mass = options.mass;
+  input.dofs = options.dofs;
+  input.nodes = options.nodes;
+  input.axes = options.axes;
+  input.fix = options.fix;
+  input.multipliers = options.multipliers;
+  input.symmetric_part = options.symmetric_part;
+  input.strike_held = options.strike_held;
+  for (const std::string& text : options.added) {
+    auto added = parse_added(text);
+    if (!added.ok()) return added.status();
+    input.added.push_back(std::move(*added));
+  }
+  if (!options.load_sign) return {};
+  if (*options.load_sign != "plus" && *options.load_sign != "minus") {
+    return Status::bad_usage("bad-load-sign",
+                             fmt::format("'{}' is neither plus nor minus", *options.load_sign), "--load-sign",
+                             "plus for K + f G (the default), minus for K - f G");
+  }
+  if (!input.geometric) {
+    return Status::bad_usage("contradiction", "there is no geometric stiffness whose sign it could give",
+                             "--load-sign", "name the matrix with --geometric, or leave --load-sign out");
+  }
+  input.load_sign_minus = *options.load_sign == "minus";
+  return {};
+}
+
+}  // namespace
+
+void declare_request_options(Arguments& arguments, RequestOptions& options, Question question) {
+  declare_matrices(arguments, options, question);
+  if (question == Question::kCount) {
+    arguments.group("Question");
+    arguments.texts("--at", options.shifts, "s1,s2,...",
+                    "where to count (may be repeated; negative ones too)");
+  }
+  declare_model_files(arguments, options);
+  declare_numbers(arguments, options);
+}
+
+Result<Request> build_request(const RequestOptions& options, Question question) {
+  Request request;
+  if (Status status = fill_input(options, request.input); !status.ok()) return status;
+  if (Status status = fill_numbers(options, request); !status.ok()) return status;
+  for (const std::string& list : options.shifts) {
+    if (Status status = append_shifts(list, request.shifts); !status.ok()) return status;
+  }
+  if (request.input.geometric) request.pencil = Pencil::kGeometric;
+  if (request.input.mass) request.pencil = Pencil::kMass;
+  if (request.input.geometric && request.input.mass) request.pencil = Pencil::kStiffness;
+  if (Status status = validate(request, question); !status.ok()) return status;
+  return request;
+}
+
+}  // namespace stanchion::cli

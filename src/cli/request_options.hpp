@@ -1,0 +1,31 @@
+// The options that shape a request, as typed, and the request made from them.
+#pragma once
+
+#include <cstdint>
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "cli/arguments.hpp"
+#include "model/question.hpp"
+#include "stanchion/request.hpp"
+#include "stanchion/status.hpp"
+
+namespace stanchion::cli {
+
+struct RequestOptions {
+  std::optional<std::string> stiffness, geometric, mass, dofs, nodes, axes, fix, multipliers;
+  std::optional<std::string> load_sign, memory_cap;
+  std::vector<std::string> added, shifts;
+  std::optional<std::int64_t> base, rows, digits, threads, seed;
+  std::optional<double> resolution, risk;
+  bool symmetric_part = false, strike_held = false;
+};
+
+/// Declares the options that `question` takes; `options` must outlive the parse.
+void declare_request_options(Arguments& arguments, RequestOptions& options, Question question);
+
+/// The validated request (see model/validate.hpp), or bad usage.
+Result<Request> build_request(const RequestOptions& options, Question question);
+
+}  // namespace stanchion::cli

@@ -1,0 +1,48 @@
+// The composition root: which commands there are, and the last net for what nobody caught.
+#include <exception>
+#include <memory>
+#include <new>
+#include <string>
+#include <vector>
+
+#include "cli/command_line.hpp"
+#include "cli/terminal.hpp"
+#include "model/exit_code.hpp"
+
+namespace {
+
+using stanchion::Status;
+
+std::vector<std::unique_ptr<stanchion::cli::Command>> all_commands() {
+  std::vector<std::unique_ptr<stanchion::cli::Command>> commands;
+  commands.push_back(stanchion::cli::make_check_command());
+  commands.push_back(stanchion::cli::make_count_command());
+  commands.push_back(stanchion::cli::make_forecast_command());
+  return commands;
+}
+
+int run(const std::vector<std::string>& arguments) {
+  const auto code = stanchion::cli::run_command_line(all_commands(), arguments);
+  if (code.ok()) return *code;
+  stanchion::cli::print_failure(code.status());
+  return stanchion::exit_code(code.status().kind());
+}
+
+int fail(const Status& failure) {
+  stanchion::cli::print_failure(failure);
+  return stanchion::exit_code(failure.kind());
+}
+
+}  // namespace
+
+int main(int argc, char** argv) {
+  try {
+    return run(std::vector<std::string>(argv + (argc > 0 ? 1 : 0), argv + argc));
+  } catch (const std::bad_alloc&) {
+    return fail(
+        Status::resource_limit("out-of-memory", "the machine gave no more memory", {},
+                               "set --memory-cap to learn the need beforehand, or use a larger machine"));
+  } catch (const std::exception& error) {
+    return fail(Status::internal(error.what()));
+  }
+}

@@ -1,0 +1,34 @@
+// The program's exit codes.
+#pragma once
+
+#include <optional>
+
+#include "model/expectation.hpp"
+#include "stanchion/outcome.hpp"
+#include "stanchion/status.hpp"
+
+namespace stanchion {
+
+enum ExitCode : int {
+  kExitGood = 0,        ///< answered, and the good answer
+  kExitNotGood = 1,     ///< answered, and not the good answer
+  kExitUsage = 2,       ///< bad usage or bad input
+  kExitUnresolved = 3,  ///< some asked statement has no certificate
+  kExitResource = 4,    ///< memory cap, disk or time
+  kExitInternal = 5,    ///< our own mistake
+  kExitInterrupted = 130
+};
+
+ExitCode exit_code(StatusKind kind);
+
+/// How an outcome is to be judged.
+struct Judgement {
+  bool symmetric_part = false;  ///< --symmetric-part: good only when an expectation says what good is
+  std::optional<Expectation> expectation;
+};
+
+/// check: good only when positive definite (or as expected). count, forecast: good when all is answered (or
+/// as expected). Unresolved as soon as an asked statement has no certificate.
+ExitCode exit_code(const Outcome& outcome, const Judgement& judgement);
+
+}  // namespace stanchion

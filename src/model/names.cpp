@@ -1,0 +1,65 @@
+#include "model/names.hpp"
+
+namespace stanchion {
+
+const char* name_of(Verdict verdict) {
+  switch (verdict) {
+    case Verdict::kPositiveDefinite:
+      return "positive_definite";
+    case Verdict::kPositiveSemidefinite:
+      return "positive_semidefinite";
+    case Verdict::kNegativeSemidefinite:
+      return "negative_semidefinite";
+    case Verdict::kNegativeDefinite:
+      return "negative_definite";
+    case Verdict::kIndefinite:
+      return "indefinite";
+    case Verdict::kUnresolved:
+      break;
+  }
+  return "unresolved";
+}
+
+const char* name_of(Level level) {
+  switch (level) {
+    case Level::kProved:
+      return "proved";
+    case Level::kStatistical:
+      return "statistical";
+    case Level::kNone:
+      break;
+  }
+  return "none";
+}
+
+const char* name_of(Question question) {
+  switch (question) {
+    case Question::kCheck:
+      return "check";
+    case Question::kCount:
+      return "count";
+    case Question::kForecast:
+      break;
+  }
+  return "forecast";
+}
+
+const char* name_of(StatusKind kind) {
+  switch (kind) {
+    case StatusKind::kOk:
+      return "ok";
+    case StatusKind::kBadUsage:
+      return "bad-usage";
+    case StatusKind::kBadInput:
+      return "bad-input";
+    case StatusKind::kResourceLimit:
+      return "resource-limit";
+    case StatusKind::kInterrupted:
+      return "interrupted";
+    case StatusKind::kInternal:
+      break;
+  }
+  return "internal";
+}
+
+}  // namespace stanchion

@@ -1,0 +1,67 @@
+#include "report/page.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <sstream>
+
+namespace stanchion {
+namespace {
+
+constexpr std::size_t kLabelWidth = 14;
+
+}  // namespace
+
+void Page::wrapped(const std::string& lead, const std::string& text) {
+  std::istringstream words(text);
+  std::string line = lead, word;
+  const std::string indent(lead.size(), ' ');
+  bool empty = true;  // nothing but the lead or the indent on this line
+  while (words >> word) {
+    if (!empty && line.size() + 1 + word.size() > kWidth) {
+      text_ += line + "\n";
+      line = indent;
+      empty = true;
+    }
+    line += (empty ? "" : " ") + word;
+    empty = false;
+  }
+  line.erase(line.find_last_not_of(' ') + 1);
+  text_ += line + "\n";
+}
+
+void Page::sentence(const std::string& text) {
+  wrapped("", text);
+}
+
+void Page::title(const std::string& text) {
+  blank();
+  text_ += text + "\n";
+}
+
+void Page::row(const std::string& label, const std::string& text) {
+  wrapped(fmt::format("  {:<{}}", label, kLabelWidth), text);
+}
+
+void Page::bullet(const std::string& text) {
+  wrapped("  - ", text);
+}
+
+void Page::table(const std::vector<std::vector<std::string>>& rows) {
+  std::vector<std::size_t> widths;
+  for (const auto& row : rows) {
+    widths.resize(std::max(widths.size(), row.size()), 0);
+    for (std::size_t k = 0; k < row.size(); ++k) widths[k] = std::max(widths[k], row[k].size());
+  }
+  for (const auto& row : rows) {
+    std::string lead = " ";
+    for (std::size_t k = 0; k + 1 < row.size(); ++k) lead += fmt::format(" {:>{}} ", row[k], widths[k]);
+    wrapped(lead + " ", row.empty() ? "" : row.back());
+  }
+}
+
+void Page::blank() {
+  text_ += "\n";
+}
+
+}  // namespace stanchion

@@ -1,0 +1,35 @@
+// A page of plain text, at most 100 columns wide: sentences, labelled rows, bullets and small tables.
+#pragma once
+
+#include <string>
+#include <vector>
+
+namespace stanchion {
+
+/// Collects text from top to bottom. Every block is wrapped at blanks; a single word longer than the page (a
+/// path, say) is left whole.
+class Page {
+ public:
+  static constexpr std::size_t kWidth = 100;
+
+  /// A sentence at the left margin.
+  void sentence(const std::string& text);
+  /// A section title, set off by an empty line.
+  void title(const std::string& text);
+  /// "  label          text", the text hanging beside its label.
+  void row(const std::string& label, const std::string& text);
+  /// "  - text", hanging.
+  void bullet(const std::string& text);
+  /// Rows of cells in columns as wide as needed: all to the right except the last column, which wraps.
+  void table(const std::vector<std::vector<std::string>>& rows);
+  void blank();
+
+  const std::string& text() const { return text_; }
+
+ private:
+  void wrapped(const std::string& lead, const std::string& text);
+
+  std::string text_;
+};
+
+}  // namespace stanchion

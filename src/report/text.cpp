@@ -1,0 +1,116 @@
+#include "report/text.hpp"
+
+#include <fmt/format.h>
+
+#include "model/version.hpp"
+#include "report/numbers.hpp"
+#include "report/text_sections.hpp"
+
+namespace stanchion {
+namespace {
+
+std::string role_in_words(const InputRecord& input) {
+  if (input.role == "stiffness") return "stiffness K";
+  if (input.role == "geometric") return "geometric G";
+  if (input.role == "mass") return "mass M";
+  return "added";
+}
+
+void write_heading(Page& page, const Outcome& outcome) {
+  if (outcome.title) page.sentence(*outcome.title);
+  if (outcome.reference) page.sentence("Reference: " + *outcome.reference);
+  if (outcome.title || outcome.reference) page.blank();
+}
+
+void write_work(Page& page, const Outcome& outcome) {
+  const Work& work = outcome.work;
+  page.row("work", fmt::format("{} of {} each, {} entries in L", counted(work.factorizations, "factorization"),
+                               flops_in_words(work.factor_flops), grouped(work.factor_entries)));
+  page.row("fronts", fmt::format("{}, the largest with {} rows; {} handed up, {} two by two",
+                                 grouped(work.supernodes), grouped(work.largest_front),
+                                 counted(work.delayed_pivots, "pivot"),
+                                 counted(work.two_by_two_pivots, "pivot")));
+  page.row("memory", fmt::format("peak {}, forecast {}", bytes_in_words(outcome.memory.peak),
+                                 bytes_in_words(outcome.memory.forecast)));
+}
+
+void write_time(Page& page, const Outcome& outcome) {
+  const Timings& t = outcome.timings;
+  std::string parts;
+  const auto part = [&](const char* name, double seconds) {
+    if (seconds <= 0) return;
+    parts += fmt::format("{}{} {}", parts.empty() ? "" : ", ", name, duration_in_words(seconds));
+  };
+  part("reading", t.read);
+  part("ordering", t.order);
+  part("analysis", t.analyse);
+  part("factors", t.factor);
+  part("certificate", t.certify);
+  page.row("time", duration_in_words(t.total) + " in all" + (parts.empty() ? "" : ": " + parts));
+  std::string machine = counted(outcome.host.cores, "core");
+  if (!outcome.host.isa.empty()) machine += ", " + outcome.host.isa;
+  if (!outcome.host.blas.empty()) machine += ", " + outcome.host.blas;
+  page.row("machine", fmt::format("{}; {} {}", machine, program_name(), program_version()));
+}
+
+void write_warnings(Page& page, const Outcome& outcome) {
+  if (outcome.warnings.empty()) return;
+  page.title(outcome.warnings.size() == 1 ? "Warning" : "Warnings");
+  for (const Warning& warning : outcome.warnings) {
+    const std::string place = warning.place.empty() ? "" : warning.place + ": ";
+    page.bullet(fmt::format("{}{} [{}]", place, warning.message, warning.code));
+  }
+}
+
+void write_not_checked(Page& page, const Outcome& outcome) {
+  if (outcome.not_checked.empty()) return;
+  page.title("Not checked");
+  for (const std::string& sentence : outcome.not_checked) page.bullet(sentence);
+}
+
+}  // namespace
+
+void write_inputs(Page& page, const Outcome& outcome) {
+  for (const InputRecord& input : outcome.inputs) {
+    std::string text = fmt::format("{}: {} equations, {} entries in the lower triangle", input.path,
+                                   grouped(input.rows), grouped(input.entries));
+    if (input.factor) text += ", times " + exact(*input.factor);
+    page.row(role_in_words(input), text);
+  }
+  if (outcome.rows_struck > 0) {
+    page.row("struck out",
+             fmt::format("{} held at zero; {} analysed", counted(outcome.rows_struck, "equation"),
+                         grouped(outcome.rows_analysed)));
+  }
+}
+
+std::string backing_in_words(Level level, const std::optional<double>& failure_probability) {
+  switch (level) {
+    case Level::kProved:
+      return "proof";
+    case Level::kStatistical:
+      return failure_probability ? fmt::format("statistics (wrong with probability at most {})",
+                                               rounded(*failure_probability))
+                                 : "statistics";
+    case Level::kNone:
+      break;
+  }
+  return "nothing: no certificate";
+}
+
+std::string to_text(const Outcome& outcome) {
+  Page page;
+  write_heading(page, outcome);
+  if (outcome.check) write_check(page, outcome);
+  if (outcome.count) write_count(page, outcome);
+  if (outcome.forecast) write_forecast(page, outcome);
+  page.blank();
+  write_inputs(page, outcome);
+  if (!outcome.forecast) write_work(page, outcome);
+  write_time(page, outcome);
+  write_warnings(page, outcome);
+  write_not_checked(page, outcome);
+  return page.text();
+}
+
+}  // namespace stanchion

@@ -1,0 +1,159 @@
+#include <fmt/format.h>
+
+#include "report/numbers.hpp"
+#include "report/text_sections.hpp"
+
+namespace stanchion {
+namespace {
+
+/// " at the resolution 1e-11", for verdicts that say something about zero.
+std::string at_resolution(const Certificate& certificate) {
+  if (!certificate.resolution) return "";
+  return " at the resolution " + rounded(*certificate.resolution);
+}
+
+std::string directions(const Inertia& inertia) {
+  return fmt::format("{}, {}", counted(inertia.negative, "negative direction"),
+                     counted(inertia.zero, "zero direction"));
+}
+
+/// Every matrix analysed is called K here, also a sum with added ones: the inputs below list its parts.
+std::string verdict_sentence(const CheckOutcome& check, Index rows) {
+  const Inertia& inertia = check.inertia;
+  const std::string resolution = at_resolution(check.certificate);
+  switch (check.verdict) {
+    case Verdict::kPositiveDefinite:
+      return fmt::format("K is positive definite: no negative and no zero direction in {}.",
+                         counted(rows, "equation"));
+    case Verdict::kPositiveSemidefinite:
+      return fmt::format("K is positive semidefinite{}: {}, no negative one.", resolution,
+                         counted(inertia.zero, "zero direction"));
+    case Verdict::kNegativeSemidefinite:
+      return fmt::format("K is negative semidefinite{}: {}, no positive one.", resolution,
+                         directions(inertia));
+    case Verdict::kNegativeDefinite:
+      return fmt::format("K is negative definite: all {} are negative (a wrong sign?).",
+                         counted(inertia.negative, "direction"));
+    case Verdict::kIndefinite:
+      return fmt::format("K is indefinite: {}{}.", directions(inertia), inertia.zero > 0 ? resolution : "");
+    case Verdict::kUnresolved:
+      break;
+  }
+  return fmt::format("Unresolved: the sign of {} could not be certified{}.",
+                     counted(inertia.undecided, "direction"), resolution);
+}
+
+std::string verdict_in_words(Verdict verdict) {
+  switch (verdict) {
+    case Verdict::kPositiveDefinite:
+      return "positive definite";
+    case Verdict::kPositiveSemidefinite:
+      return "positive semidefinite at the resolution";
+    case Verdict::kNegativeSemidefinite:
+      return "negative semidefinite at the resolution";
+    case Verdict::kNegativeDefinite:
+      return "negative definite";
+    case Verdict::kIndefinite:
+      return "indefinite";
+    case Verdict::kUnresolved:
+      break;
+  }
+  return "unresolved";
+}
+
+/// What the verdict means for the structure, in one plain sentence; nothing where that goes without saying.
+std::string consequence(const CheckOutcome& check) {
+  switch (check.verdict) {
+    case Verdict::kPositiveSemidefinite:
+      return "Along a zero direction the structure moves without resistance: a missing support, a mechanism "
+             "or a "
+             "degree of freedom that nothing holds.";
+    case Verdict::kIndefinite:
+      return "Along a negative direction the structure gives way by itself: it is past a critical state, or "
+             "the "
+             "matrix has a fault.";
+    case Verdict::kUnresolved:
+      return "No verdict is given, because none is certain. A larger --resolution may settle it, with zero "
+             "directions stated more coarsely.";
+    default:
+      return "";
+  }
+}
+
+void write_inertia(Page& page, const Inertia& inertia) {
+  std::string text = fmt::format("{} negative, {} zero, {} positive", grouped(inertia.negative),
+                                 grouped(inertia.zero), grouped(inertia.positive));
+  if (inertia.undecided > 0) text += fmt::format(", {} undecided", grouped(inertia.undecided));
+  page.row("inertia", text);
+}
+
+std::string method_in_words(const Certificate& certificate) {
+  std::string text;
+  if (certificate.method == "offsets") {
+    text = certificate.runs.size() == 1 ? " by one factorization off zero"
+                                        : " by factorizations on both sides of zero";
+  } else if (certificate.method == "relative") {
+    text = " by one factorization compared with the matrix itself";
+  }
+  if (certificate.precision) text += ", in " + *certificate.precision + " precision";
+  return text;
+}
+
+void write_certificate(Page& page, const Certificate& certificate) {
+  page.row("backed by", backing_in_words(certificate.level, certificate.failure_probability) +
+                            method_in_words(certificate));
+  for (const OffsetRun& run : certificate.runs) {
+    const std::string bound = run.error_bound ? "rounding errors at most " + rounded(*run.error_bound)
+                                              : "no bound on the rounding errors";
+    page.row("", fmt::format("offset {:+.3g}: {} below, {}", run.offset, grouped(run.negative), bound));
+  }
+  if (certificate.relative_bound) {
+    page.row("",
+             fmt::format("relative error at most {} (1 is the limit)", rounded(*certificate.relative_bound)));
+  }
+  if (certificate.resolution) {
+    page.row("resolution",
+             rounded(*certificate.resolution) + " of the scaled matrix, whose rows are about 1");
+  }
+  if (certificate.smallest_eigenvalue_above) {
+    std::string text = "the smallest eigenvalue of the scaled matrix exceeds " +
+                       rounded(*certificate.smallest_eigenvalue_above);
+    if (certificate.smallest_eigenvalue_of_k_above) {
+      text += ", that of K itself " + rounded(*certificate.smallest_eigenvalue_of_k_above);
+    }
+    page.row("it follows", text);
+  }
+  for (const std::string& assumption : certificate.assumptions) page.row("assuming", assumption);
+}
+
+void write_constrained(Page& page, const ConstrainedOutcome& constrained) {
+  page.title("The structure on its constraints");
+  std::string multipliers = counted(constrained.multipliers, "multiplier");
+  if (constrained.rank) multipliers += fmt::format(", {} independent", grouped(*constrained.rank));
+  if (constrained.redundant) multipliers += fmt::format(", {} redundant", grouped(*constrained.redundant));
+  page.row("constraints", multipliers);
+  if (constrained.inertia) write_inertia(page, *constrained.inertia);
+  if (constrained.negative_range) {
+    page.row("negative", fmt::format("between {} and {}: the rank of the constraints is not certified",
+                                     grouped(constrained.negative_range->first),
+                                     grouped(constrained.negative_range->second)));
+  }
+}
+
+}  // namespace
+
+void write_check(Page& page, const Outcome& outcome) {
+  const CheckOutcome& check = *outcome.check;
+  page.sentence(verdict_sentence(check, outcome.rows_analysed));
+  if (const std::string meaning = consequence(check); !meaning.empty()) page.sentence(meaning);
+  if (check.verdict_as_written) {
+    page.sentence(fmt::format("For every matrix whose rounding gives the numbers in the file: {}.",
+                              verdict_in_words(*check.verdict_as_written)));
+  }
+  page.blank();
+  write_inertia(page, check.inertia);
+  write_certificate(page, check.certificate);
+  if (check.constrained) write_constrained(page, *check.constrained);
+}
+
+}  // namespace stanchion

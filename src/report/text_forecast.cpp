@@ -1,0 +1,22 @@
+#include <fmt/format.h>
+
+#include "report/numbers.hpp"
+#include "report/text_sections.hpp"
+
+namespace stanchion {
+
+void write_forecast(Page& page, const Outcome& outcome) {
+  const ForecastOutcome& forecast = *outcome.forecast;
+  page.sentence(fmt::format("One count will take about {} and {} of memory.",
+                            duration_in_words(forecast.seconds), bytes_in_words(forecast.peak_bytes_count)));
+  page.blank();
+  page.row("factor", fmt::format("{} entries, {}", grouped(forecast.factor_entries),
+                                 flops_in_words(forecast.factor_flops)));
+  page.row("memory",
+           fmt::format("{} to count (the factor is thrown away), {} to keep the factor",
+                       bytes_in_words(forecast.peak_bytes_count), bytes_in_words(forecast.peak_bytes_solve)));
+  page.row("fronts", fmt::format("{}, the largest with {} rows", grouped(outcome.work.supernodes),
+                                 grouped(outcome.work.largest_front)));
+}
+
+}  // namespace stanchion

@@ -1,0 +1,26 @@
+// The parts of the text report, one function a section; text.cpp puts them in order.
+#pragma once
+
+#include <optional>
+#include <string>
+
+#include "report/page.hpp"
+#include "stanchion/outcome.hpp"
+
+namespace stanchion {
+
+/// Verdict sentence, inertia, and what backs them.
+void write_check(Page& page, const Outcome& outcome);
+
+/// What was counted, and one row a shift.
+void write_count(Page& page, const Outcome& outcome);
+
+void write_forecast(Page& page, const Outcome& outcome);
+
+/// The matrices that went in, one row each.
+void write_inputs(Page& page, const Outcome& outcome);
+
+/// "proof", "statistics (wrong with probability at most 1e-06)" or "nothing: no certificate".
+std::string backing_in_words(Level level, const std::optional<double>& failure_probability);
+
+}  // namespace stanchion
