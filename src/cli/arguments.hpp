@@ -23,7 +23,9 @@ class Arguments {
   /// Options declared from here on appear under this title in the help.
   void group(const std::string& title);
 
-  void positional(const std::string& name, std::optional<std::string>& target, const std::string& help);
+  /// In the order of declaration; a `required` one that is missing is bad usage.
+  void positional(const std::string& name, std::optional<std::string>& target, const std::string& value,
+                  const std::string& help, bool required);
   void flag(const std::string& name, bool& target, const std::string& help);
   void text(const std::string& name, std::optional<std::string>& target, const std::string& value,
             const std::string& help);

@@ -7,7 +7,7 @@ class CheckCommand : public QuestionCommand {
  public:
   CheckCommand() : QuestionCommand(Question::kCheck, run_check) {}
   const char* summary() const override {
-    return "Is K positive definite? If not: how many negative and zero directions, with a certificate";
+    return "is K positive definite; if not, its negative and zero directions";
   }
   void declare(Arguments& arguments) override;
 };

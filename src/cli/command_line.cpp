@@ -24,8 +24,8 @@ void Arguments::group(const std::string& title) {
 }
 
 void Arguments::positional(const std::string& name, std::optional<std::string>& target,
-                           const std::string& help) {
-  parser_->app->add_option(name, target, help)->type_name("FILE");
+                           const std::string& value, const std::string& help, bool required) {
+  parser_->app->add_option(name, target, help)->type_name(value)->required(required);
 }
 
 void Arguments::flag(const std::string& name, bool& target, const std::string& help) {
@@ -91,6 +91,8 @@ constexpr const char* kExitCodes =
     "  130 interrupted\n\n"
     "`stanchion COMMAND --help` lists the options of a command.";
 
+constexpr const char* kHelpOfHelp = "print this help";
+
 struct DeclaredCommand {
   Command* command;
   CLI::App* app;
@@ -110,9 +112,9 @@ std::string help_hint(const CLI::App& app, const std::vector<DeclaredCommand>& c
 Status usage_failure(const CLI::ParseError& error, const CLI::App& app,
                      const std::vector<DeclaredCommand>& commands) {
   const std::string hint = help_hint(app, commands);
-  if (dynamic_cast<const CLI::ExtrasError*>(&error) != nullptr) {
-    const auto left = app.remaining(true);
-    const std::string first = left.empty() ? "" : left.front();
+  const auto left = app.remaining(true);
+  if (!left.empty()) {
+    const std::string& first = left.front();
     const bool option = !first.empty() && first[0] == '-';
     const bool any_command = !app.get_subcommands().empty();
     const char* what = option        ? "no option of this command"
@@ -122,7 +124,9 @@ Status usage_failure(const CLI::ParseError& error, const CLI::App& app,
                              hint);
   }
   if (dynamic_cast<const CLI::RequiredError*>(&error) != nullptr) {
-    return Status::bad_usage("missing-argument", "no command was given", "command line", hint);
+    return Status::bad_usage("missing-argument",
+                             app.get_subcommands().empty() ? "no command was given" : error.what(),
+                             "command line", hint);
   }
   return Status::bad_usage("bad-argument", error.what(), "command line", hint);
 }
@@ -132,6 +136,8 @@ std::vector<DeclaredCommand> declare_all(CLI::App& app,
   std::vector<DeclaredCommand> declared;
   for (const auto& command : commands) {
     CLI::App* sub = app.add_subcommand(command->name(), command->summary());
+    sub->set_help_flag("-h,--help", kHelpOfHelp);
+
     auto arguments = std::make_unique<Arguments>(std::make_unique<Arguments::Parser>(Arguments::Parser{sub}));
     command->declare(*arguments);
     declared.push_back({command.get(), sub, std::move(arguments)});
@@ -147,8 +153,11 @@ Result<int> run_command_line(const std::vector<std::unique_ptr<Command>>& comman
       "Certified inertia of large sparse stiffness matrices: is the structure stable, how many\n"
       "buckling factors or frequencies lie below a value, and how sure is that.",
       program_name());
-  app.set_version_flag("--version", fmt::format("{} {}", program_name(), program_version()));
+  app.set_version_flag("--version", fmt::format("{} {}", program_name(), program_version()),
+                       "print name and version");
+  app.set_help_flag("-h,--help", kHelpOfHelp);
   app.footer(kExitCodes);
+
   app.require_subcommand(1);
   app.get_formatter()->column_width(34);
   const auto declared = declare_all(app, commands);

@@ -6,9 +6,7 @@ namespace {
 class CountCommand : public QuestionCommand {
  public:
   CountCommand() : QuestionCommand(Question::kCount, run_count) {}
-  const char* summary() const override {
-    return "How many eigenvalues below a shift, or critical factors between 0 and a load factor";
-  }
+  const char* summary() const override { return "how many eigenvalues or critical factors below a value"; }
   void declare(Arguments& arguments) override;
 };
 

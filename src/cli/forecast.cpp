@@ -6,9 +6,7 @@ namespace {
 class ForecastCommand : public QuestionCommand {
  public:
   ForecastCommand() : QuestionCommand(Question::kForecast, run_forecast) {}
-  const char* summary() const override {
-    return "Factor size, flops, peak memory and likely time, before anything is factored";
-  }
+  const char* summary() const override { return "memory and time, before anything is factored"; }
   void declare(Arguments& arguments) override;
 };
 

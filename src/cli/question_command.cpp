@@ -1,5 +1,8 @@
 #include "cli/question_command.hpp"
 
+#include <filesystem>
+#include <system_error>
+
 #include "cli/interrupt.hpp"
 #include "cli/log_file.hpp"
 #include "cli/output_file.hpp"
@@ -35,10 +38,29 @@ Result<Judgement> build_judgement(const OutputOptions& output, bool symmetric_pa
   return judgement;
 }
 
+/// Bad usage when writing the answer would destroy a file that is read.
+Status check_overwrites_nothing(const std::string& target, const InputRequest& input) {
+  std::vector<std::string> read{input.stiffness};
+  for (const auto& path :
+       {input.geometric, input.mass, input.dofs, input.nodes, input.axes, input.fix, input.multipliers}) {
+    if (path) read.push_back(*path);
+  }
+  for (const AddedMatrix& added : input.added) read.push_back(added.path);
+  for (const std::string& path : read) {
+    std::error_code absent;
+    if (!std::filesystem::equivalent(path, target, absent)) continue;
+    return Status::bad_usage("contradiction", path + " is read and would be overwritten", "--json",
+                             "name another file for the answer");
+  }
+  return {};
+}
+
 /// The JSON file, opened ahead of the work; nothing when no file was asked.
-Result<std::optional<OutputFile>> open_json_file(const OutputOptions& output) {
+Result<std::optional<OutputFile>> open_json_file(const OutputOptions& output, const InputRequest& input) {
   std::optional<OutputFile> file;
   if (!output.json || *output.json == "-") return file;
+  if (Status status = check_overwrites_nothing(*output.json, input); !status.ok()) return status;
+
   auto opened = OutputFile::open("--json", *output.json);
   if (!opened.ok()) return opened.status();
   file = std::move(*opened);
@@ -82,7 +104,7 @@ Result<int> QuestionCommand::run(const Call& call) {
   if (!request.ok()) return request.status();
   const auto judgement = build_judgement(output_, request_.symmetric_part, question_);
   if (!judgement.ok()) return judgement.status();
-  auto json_file = open_json_file(output_);
+  auto json_file = open_json_file(output_, request->input);
   if (!json_file.ok()) return json_file.status();
   const auto log = LogFile::open(output_.log);
   if (!log.ok()) return log.status();

@@ -11,7 +11,8 @@ namespace stanchion::cli {
 namespace {
 
 void declare_matrices(Arguments& arguments, RequestOptions& options, Question question) {
-  arguments.positional("K", options.stiffness, "the stiffness matrix; its format is found from its content");
+  arguments.positional("K", options.stiffness, "FILE",
+                       "the stiffness matrix; its format is found from its content", true);
   arguments.group("Matrices");
   if (question != Question::kCheck) {
     arguments.text("--geometric", options.geometric, "FILE", "geometric stiffness G: the pencil K + f G");

@@ -24,12 +24,13 @@ void write_heading(Page& page, const Outcome& outcome) {
 
 void write_work(Page& page, const Outcome& outcome) {
   const Work& work = outcome.work;
-  page.row("work", fmt::format("{} of {} each, {} entries in L", counted(work.factorizations, "factorization"),
-                               flops_in_words(work.factor_flops), grouped(work.factor_entries)));
-  page.row("fronts", fmt::format("{}, the largest with {} rows; {} handed up, {} two by two",
-                                 grouped(work.supernodes), grouped(work.largest_front),
-                                 counted(work.delayed_pivots, "pivot"),
-                                 counted(work.two_by_two_pivots, "pivot")));
+  page.row("work", fmt::format("{} of {}{}, {} entries in L", counted(work.factorizations, "factorization"),
+                               flops_in_words(work.factor_flops), work.factorizations > 1 ? " each" : "",
+                               grouped(work.factor_entries)));
+  page.row("fronts",
+           fmt::format("{}, the largest with {} rows; {} handed up, {} two by two", grouped(work.supernodes),
+                       grouped(work.largest_front), counted(work.delayed_pivots, "pivot"),
+                       counted(work.two_by_two_pivots, "pivot")));
   page.row("memory", fmt::format("peak {}, forecast {}", bytes_in_words(outcome.memory.peak),
                                  bytes_in_words(outcome.memory.forecast)));
 }
@@ -41,12 +42,12 @@ void write_time(Page& page, const Outcome& outcome) {
     if (seconds <= 0) return;
     parts += fmt::format("{}{} {}", parts.empty() ? "" : ", ", name, duration_in_words(seconds));
   };
-  part("reading", t.read);
-  part("ordering", t.order);
-  part("analysis", t.analyse);
-  part("factors", t.factor);
-  part("certificate", t.certify);
-  page.row("time", duration_in_words(t.total) + " in all" + (parts.empty() ? "" : ": " + parts));
+  part("read", t.read);
+  part("order", t.order);
+  part("analyse", t.analyse);
+  part("factor", t.factor);
+  part("certify", t.certify);
+  page.row("time", duration_in_words(t.total) + (parts.empty() ? "" : ": " + parts));
   std::string machine = counted(outcome.host.cores, "core");
   if (!outcome.host.isa.empty()) machine += ", " + outcome.host.isa;
   if (!outcome.host.blas.empty()) machine += ", " + outcome.host.blas;

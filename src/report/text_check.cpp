@@ -90,10 +90,10 @@ void write_inertia(Page& page, const Inertia& inertia) {
 std::string method_in_words(const Certificate& certificate) {
   std::string text;
   if (certificate.method == "offsets") {
-    text = certificate.runs.size() == 1 ? " by one factorization off zero"
-                                        : " by factorizations on both sides of zero";
+    text = certificate.runs.size() == 1 ? ", from one factorization shifted off zero"
+                                        : ", from factorizations on both sides of zero";
   } else if (certificate.method == "relative") {
-    text = " by one factorization compared with the matrix itself";
+    text = ", from one factorization compared with the matrix itself";
   }
   if (certificate.precision) text += ", in " + *certificate.precision + " precision";
   return text;

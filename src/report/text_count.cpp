@@ -1,6 +1,7 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <cmath>
 
 #include "report/numbers.hpp"
 #include "report/text_sections.hpp"
@@ -23,8 +24,9 @@ std::string backing(const ShiftCount& count) {
 
 std::string limits(const ShiftCount& count) {
   if (!count.holds_outside) return "";
-  return fmt::format("; holds unless one lies from {} to {}", exact(count.holds_outside->first),
-                     exact(count.holds_outside->second));
+  const double reach = std::max(std::abs(count.holds_outside->first - count.shift),
+                                std::abs(count.holds_outside->second - count.shift));
+  return fmt::format("; exact unless one lies within {} of it", rounded(reach));
 }
 
 bool same_meaning(const std::vector<ShiftCount>& counts) {
