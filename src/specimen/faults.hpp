@@ -1,0 +1,40 @@
+// Planting defects of known consequence.
+#pragma once
+
+#include <array>
+#include <functional>
+#include <string>
+#include <vector>
+
+#include "specimen/model.hpp"
+
+namespace stanchion::specimen {
+
+/// True for the elements that are to come loose.
+using ElementChoice = std::function<bool(const Part& part, Offset element)>;
+
+/// Gives the chosen elements their own copies of the nodes that they share with the others, except the nodes
+/// for which `kept` says true. Returns the copies. The part is then loose, but for the kept nodes.
+std::vector<Index> detach(
+    Model& model, const ElementChoice& chosen,
+    const std::function<bool(Index node)>& kept = [](Index) { return false; });
+
+/// The centre of an element's nodes.
+Point centre_of(const Model& model, const Part& part, Offset element);
+
+/// Holds ux, uy and uz of the given nodes with springs of `stiffness` each.
+void hold_softly(Model& model, const std::vector<Index>& nodes, double stiffness);
+
+/// Displacements ux uy uz rx ry rz of a smooth trial motion at a place.
+using TrialMotion = std::function<std::array<double, 6>(const Point&)>;
+
+/// Adds one negative spring at the unknown where `motion` is largest among the displacements: minus twice
+/// x^T K x / x_i^2, with x the trial motion. x then has negative energy, and a change of rank one moves at
+/// most one eigenvalue across zero: K, positive definite before, has exactly one negative eigenvalue and no
+/// zero.
+void add_negative_spring(Specimen& specimen, const TrialMotion& motion);
+
+/// `n` eigenvalues, of which `negative` and `zero`; the rest positive.
+ExpectedInertia inertia_of(const Specimen& specimen, Index negative, Index zero, std::string why);
+
+}  // namespace stanchion::specimen
