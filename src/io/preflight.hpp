@@ -1,0 +1,45 @@
+// What can be seen on a matrix before anything is factored.
+#pragma once
+
+#include <string>
+#include <vector>
+
+#include "io/dof_map.hpp"
+#include "io/read_matrix.hpp"
+#include "sparse/symmetric_matrix.hpp"
+#include "stanchion/status.hpp"
+
+namespace stanchion {
+
+/// The matrix under inspection. Pointees outlive the call; `dofs` and `multipliers` may be null.
+struct PreflightSubject {
+  const SymmetricMatrix& matrix;
+  std::string path;
+  MatrixRole role = MatrixRole::kStiffness;
+  const DofMap* dofs = nullptr;                     ///< names nodes and dofs in the findings
+  const std::vector<Index>* multipliers = nullptr;  ///< equations whose diagonal is rightly zero
+};
+
+/// Counts behind the findings.
+struct PreflightFacts {
+  Offset empty_rows = 0, zero_diagonals = 0, negative_diagonals = 0, identity_rows = 0;
+  double least_diagonal = 0, greatest_diagonal = 0;  ///< of the positive ones; 0 when there are none
+  Index parts = 0;                                   ///< connected parts, without empty and identity rows
+};
+
+struct Preflight {
+  PreflightFacts facts;
+  Warnings warnings;  ///< at most one a kind, with the first few places and the count of the rest
+};
+
+/// Findings, each with its remedy in the message: "empty-rows", "zero-diagonal", "negative-diagonal",
+/// "identity-rows", "diagonal-spread", "disconnected-parts". A second matrix may rightly be empty or negative
+/// in places: for it only what cannot be meant is reported. Cost: two passes over the entries, serial.
+/// With `dofs` the dofs of one node count as connected.
+Result<Preflight> preflight(const PreflightSubject& subject);
+
+/// kBadInput "dof-map-size" unless the map has exactly one line an equation.
+Status check_dof_map_size(const DofMap& dofs, const std::string& dofs_path, const SymmetricMatrix& matrix,
+                          const std::string& matrix_path);
+
+}  // namespace stanchion

@@ -1,0 +1,46 @@
+// Writers of the small tables that accompany a matrix.
+#include <new>
+
+#include "io/dof_map.hpp"
+#include "io/equation_list.hpp"
+#include "io/output_file.hpp"
+#include "io/shortest.hpp"
+
+namespace stanchion {
+namespace {
+
+/// A field as CSV has it: quoted where it must be.
+std::string field(const std::string& text) {
+  if (text.find_first_of(",;\"\t ") == std::string::npos) return text;
+  std::string quoted = "\"";
+  for (const char c : text) {
+    if (c == '"') quoted += '"';
+    quoted += c;
+  }
+  return quoted + '"';
+}
+
+}  // namespace
+
+Status write_dof_map(const DofMap& map, const std::string& path) {
+  OutputFile file(path, has_extension(path, ".gz"));
+  file.write("equation,node,dof\n");
+  for (Index equation = 0; equation < map.equations() && file.ok(); ++equation) {
+    std::string line;
+    append_integer(line, equation + 1);
+    line += ',';
+    if (map.node(equation) != kNoNode) append_integer(line, map.node(equation));
+    line += ',' + field(map.dof(equation)) + '\n';
+    file.write(line);
+  }
+  return file.commit();
+}
+
+Status write_equation_list(const std::vector<Index>& equations, const std::string& path) {
+  OutputFile file(path, has_extension(path, ".gz"));
+  file.write("equation\n");
+  for (const Index equation : equations) file.write(std::to_string(equation + 1) + "\n");
+  return file.commit();
+}
+
+}  // namespace stanchion
