@@ -43,6 +43,23 @@ std::string verdict_sentence(const CheckOutcome& check, Index rows) {
                      counted(inertia.undecided, "direction"), resolution);
 }
 
+/// With multipliers the structure on its constraints is what a person asks about; the bordered matrix itself
+/// is always indefinite.
+std::string constrained_sentence(const ConstrainedOutcome& constrained, const Certificate& certificate) {
+  if (constrained.inertia && constrained.inertia->undecided == 0) {
+    const Inertia& inertia = *constrained.inertia;
+    if (inertia.negative == 0 && inertia.zero == 0) {
+      return "On its constraints the structure is positive definite: no negative and no zero direction.";
+    }
+    return fmt::format("On its constraints the structure has {}{}.", directions(inertia),
+                       inertia.zero > 0 ? at_resolution(certificate) : "");
+  }
+  if (!constrained.negative_range)
+    return "Unresolved: how the structure stands on its constraints is not known.";
+  return fmt::format("On its constraints the structure has between {} and {} negative directions.",
+                     grouped(constrained.negative_range->first), grouped(constrained.negative_range->second));
+}
+
 std::string verdict_in_words(Verdict verdict) {
   switch (verdict) {
     case Verdict::kPositiveDefinite:
@@ -63,6 +80,10 @@ std::string verdict_in_words(Verdict verdict) {
 
 /// What the verdict means for the structure, in one plain sentence; nothing where that goes without saying.
 std::string consequence(const CheckOutcome& check) {
+  if (check.constrained) {
+    return fmt::format("Its {} make K indefinite; that is no fault.",
+                       counted(check.constrained->multipliers, "multiplier"));
+  }
   switch (check.verdict) {
     case Verdict::kPositiveSemidefinite:
       return "Along a zero direction the structure moves without resistance: a missing support, a mechanism "
@@ -144,6 +165,7 @@ void write_constrained(Page& page, const ConstrainedOutcome& constrained) {
 
 void write_check(Page& page, const Outcome& outcome) {
   const CheckOutcome& check = *outcome.check;
+  if (check.constrained) page.sentence(constrained_sentence(*check.constrained, check.certificate));
   page.sentence(verdict_sentence(check, outcome.rows_analysed));
   if (const std::string meaning = consequence(check); !meaning.empty()) page.sentence(meaning);
   if (check.verdict_as_written) {

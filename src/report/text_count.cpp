@@ -18,15 +18,15 @@ std::string backing(const ShiftCount& count) {
   std::string text = backing_in_words(count.level, count.failure_probability);
   if (count.method == "offsets") text += ", factors on both sides";
   if (count.method == "relative") text += ", one factor compared with the matrix";
-  if (count.certificate.precision) text += ", " + *count.certificate.precision + " precision";
+  if (count.certificate.precision == "single") text += ", in single precision";
   return text;
 }
 
-std::string limits(const ShiftCount& count) {
-  if (!count.holds_outside) return "";
-  const double reach = std::max(std::abs(count.holds_outside->first - count.shift),
-                                std::abs(count.holds_outside->second - count.shift));
-  return fmt::format("; exact unless one lies within {} of it", rounded(reach));
+/// How near to the shift an eigenvalue would have to lie for the count to be off; "-" when nothing can.
+std::string margin(const ShiftCount& count) {
+  if (!count.holds_outside) return "-";
+  return rounded(std::max(std::abs(count.holds_outside->first - count.shift),
+                          std::abs(count.holds_outside->second - count.shift)));
 }
 
 bool same_meaning(const std::vector<ShiftCount>& counts) {
@@ -47,6 +47,15 @@ std::string headline(const std::vector<ShiftCount>& counts) {
   return fmt::format("Not every count could be certified: {}.", meaning);
 }
 
+std::vector<std::vector<std::string>> rows_of(const std::vector<ShiftCount>& counts, bool one_meaning) {
+  std::vector<std::vector<std::string>> rows{{"shift", "count", "margin", "backed by"}};
+  for (const ShiftCount& count : counts) {
+    const std::string meaning = one_meaning ? "" : "; " + count.meaning;
+    rows.push_back({exact(count.shift), count_in_words(count), margin(count), backing(count) + meaning});
+  }
+  return rows;
+}
+
 }  // namespace
 
 void write_count(Page& page, const Outcome& outcome) {
@@ -59,13 +68,11 @@ void write_count(Page& page, const Outcome& outcome) {
   page.sentence(headline(answer.counts));
   for (const std::string& sentence : answer.sentences) page.sentence(sentence);
   page.blank();
-  std::vector<std::vector<std::string>> rows{{"shift", "count", "backed by"}};
-  for (const ShiftCount& count : answer.counts) {
-    std::string last = backing(count) + limits(count);
-    if (!one_meaning) last = count.meaning + "; " + last;
-    rows.push_back({exact(count.shift), count_in_words(count), last});
-  }
-  page.table(rows);
+  page.table(rows_of(answer.counts, one_meaning));
+  const bool margins = std::any_of(answer.counts.begin(), answer.counts.end(),
+                                   [](const ShiftCount& count) { return count.holds_outside.has_value(); });
+  if (margins)
+    page.sentence("A count is exact unless one of what is counted lies within the margin of its shift.");
 }
 
 }  // namespace stanchion
