@@ -1,0 +1,28 @@
+// Dense products from the BLAS at hand, called with one thread: our own workers provide the parallelism.
+#pragma once
+
+#include <string>
+
+#include "stanchion/types.hpp"
+
+namespace stanchion {
+
+/// C = alpha A B^T + beta C, column-major; A m x k, B n x k, C m x n. Any summation order over k, no Strassen.
+void gemm_nt(Index m, Index n, Index k, double alpha, const double* a, Index lda, const double* b, Index ldb,
+             double beta, double* c, Index ldc);
+
+/// C = alpha A B + beta C, column-major; A m x k, B k x n, C m x n.
+void gemm_nn(Index m, Index n, Index k, double alpha, const double* a, Index lda, const double* b, Index ldb,
+             double beta, double* c, Index ldc);
+
+/// C = alpha A^T B + beta C, column-major; A k x m, B k x n, C m x n.
+void gemm_tn(Index m, Index n, Index k, double alpha, const double* a, Index lda, const double* b, Index ldb,
+             double beta, double* c, Index ldc);
+
+/// Turns the library's own threads off, once per process. Call before the first product.
+void use_single_threaded_blas();
+
+/// Name, version and kernel of the BLAS in use, as it reports itself.
+std::string blas_description();
+
+}  // namespace stanchion

@@ -1,0 +1,62 @@
+// Eliminates the pivots of one front: L D L^T with 1x1 and 2x2 pivots, accepted after the fact.
+#pragma once
+
+#include <vector>
+
+#include "base/buffer.hpp"
+#include "base/threads.hpp"
+#include "dense/block_lower.hpp"
+#include "dense/kernels.hpp"
+
+namespace stanchion {
+
+struct EliminationOptions {
+  bool definite = false;     ///< no pivoting; stop at the first pivot that is not positive
+  double threshold = 0.01;   ///< multipliers stay below 1 / threshold (not when definite)
+  bool keep_factor = false;  ///< the rows of L already computed follow later interchanges
+};
+
+/// A front: rows [0, candidates) may be eliminated, the rest only updated. Nothing is owned.
+struct Front {
+  BlockLower matrix;      ///< in: assembled lower triangle; out: L below eliminated pivots, Schur complement after
+  Index candidates = 0;
+  PivotArrays pivots{};   ///< room for `candidates`
+  Index* label = nullptr;      ///< one per row, permuted along (callers put equation positions here)
+  double* row_error = nullptr; ///< one per row, permuted along; bounds are added here. Never null.
+  double* growth = nullptr;    ///< one per row, zero on entry: gets row sums of |L||D||L^T|. Never null.
+};
+
+struct EliminationResult {
+  Index eliminated = 0;         ///< leading rows that became pivots; the others wait for the parent
+  bool stopped = false;         ///< definite only: a pivot was not positive
+  bool not_finite = false;      ///< overflow: the front holds Inf or NaN, nothing may be concluded
+  Offset two_by_two = 0;
+  Index longest_sum = 0;        ///< most products added up in one call
+  Index additions = 0;          ///< most such sums added to one entry
+};
+
+/// Scratch of one worker, grown on demand and reused from front to front.
+struct EliminationScratch {
+  Buffer<double> scaled;                ///< W = L D of the current column block
+  std::vector<double> tile, inverse, column_parts, sums;
+  std::vector<Index> permutation;
+};
+
+/// Pivots are taken tile by tile inside a column block: first in the order given, then with complete pivoting
+/// inside the tile; columns whose multipliers exceed the limit are put back and retried later, at last one by one
+/// with a full search (Duff, Hogg, Lopez, SIAM J. Sci. Comput. 42 (2020) C23). Nothing is perturbed.
+/// When no row lies below the candidates, all of them are eliminated. Zero pivots are exact zero columns.
+/// `team` null: this thread alone; the result has the same bits either way. Cost: order^2 x candidates flops.
+EliminationResult eliminate_front(const Front& front, const EliminationOptions& options, EliminationScratch& scratch,
+                                  ThreadPool* team);
+
+/// Interchanges rows and columns i < j of the front, with their labels and bounds. Columns before
+/// `first_kept_column` are not touched.
+void swap_symmetric(const Front& front, Index i, Index j, Index first_kept_column);
+
+/// The last resort for candidates [from, candidates): threshold partial pivoting with a search of whole columns.
+/// Returns the first row that was not eliminated. Cost: (candidates - from)^2 x order.
+Index eliminate_by_search(const Front& front, Index from, const EliminationOptions& options,
+                          EliminationScratch& scratch, ThreadPool* team, EliminationResult& result);
+
+}  // namespace stanchion

@@ -1,0 +1,4 @@
+// The kernels for one instruction set; the flags come from CMakeLists.txt.
+#define STANCHION_KERNEL_ISA isa_avx2
+#define STANCHION_KERNEL_NAME "AVX2"
+#include "dense/kernels_impl.hpp"

@@ -1,0 +1,329 @@
+// The loops behind dense/kernels.hpp, included once per instruction set with STANCHION_KERNEL_ISA defined.
+// Everything here is local to its translation unit: no inline function of a header may be instantiated with
+// instructions the processor might lack.
+
+#include "dense/kernels.hpp"
+
+namespace stanchion {
+namespace {
+
+inline double magnitude(double x) { return __builtin_fabs(x); }
+inline bool finite(double x) { return __builtin_isfinite(x); }
+
+// Eight lanes whatever the instruction set: sums keep one order, and the compiler may not reorder them itself.
+typedef double Lanes __attribute__((vector_size(64)));
+typedef long long LaneBits __attribute__((vector_size(64)));
+constexpr Index kLanes = 8;
+
+inline Lanes load(const double* p) {
+  Lanes v;
+  __builtin_memcpy(&v, p, sizeof(v));
+  return v;
+}
+inline void store(double* p, Lanes v) { __builtin_memcpy(p, &v, sizeof(v)); }
+inline Lanes magnitude(Lanes v) {
+  const LaneBits mask = LaneBits{} + 0x7fffffffffffffffLL;
+  return (Lanes)((LaneBits)v & mask);
+}
+inline double sum_of(Lanes v) { return ((v[0] + v[4]) + (v[2] + v[6])) + ((v[1] + v[5]) + (v[3] + v[7])); }
+
+/// Largest |x_i|; infinite when one is not a number.
+inline double abs_max(const double* x, Index count) {
+  Lanes largest{}, probe{};
+  Index i = 0;
+  for (; i + kLanes <= count; i += kLanes) {
+    const Lanes v = load(x + i), m = magnitude(v);
+    largest = m > largest ? m : largest;
+    probe += v * 0.0;
+  }
+  double result = 0, check = sum_of(probe);
+  for (Index lane = 0; lane < kLanes; ++lane) result = largest[lane] > result ? largest[lane] : result;
+  for (; i < count; ++i) {
+    result = magnitude(x[i]) > result ? magnitude(x[i]) : result;
+    check += x[i] * 0.0;
+  }
+  return check == 0 ? result : __builtin_inf();
+}
+
+inline double abs_sum_of(const double* x, Index count) {
+  Lanes sum{};
+  Index i = 0;
+  for (; i + kLanes <= count; i += kLanes) sum += magnitude(load(x + i));
+  double result = sum_of(sum);
+  for (; i < count; ++i) result += magnitude(x[i]);
+  return result;
+}
+
+Index factor_tile(double* tile, Index leading, Index width, bool definite, double growth_limit, PivotArrays pivots) {
+  for (Index k = 0; k < width; ++k) {
+    double* column = tile + static_cast<long>(k) * leading;
+    const double pivot = column[k];
+    if (!finite(pivot) || (definite ? pivot : magnitude(pivot)) < kLeastPivot) return k;
+    if (!definite) {
+      const double largest = abs_max(column + k + 1, width - k - 1);
+      if (!(largest <= growth_limit * magnitude(pivot))) return k;
+    }
+    pivots.diagonal[k] = pivot;
+    pivots.off_diagonal[k] = 0;
+    pivots.kind[k] = PivotKind::kOne;
+    const double inverse = 1 / pivot;
+    for (Index i = k + 1; i < width; ++i) {
+      const double w = column[i];
+      tile[k + static_cast<long>(i) * leading] = w;
+      column[i] = w * inverse;
+    }
+    for (Index j = k + 1; j < width; ++j) {
+      double* target = tile + static_cast<long>(j) * leading;
+      const double w = target[k];
+      for (Index i = j; i < width; ++i) target[i] -= column[i] * w;
+    }
+  }
+  return width;
+}
+
+void swap_rows_and_columns(double* full, Index leading, Index width, Index a, Index b, Index* permutation) {
+  if (a == b) return;
+  for (Index i = 0; i < width; ++i) {
+    const double t = full[i + static_cast<long>(a) * leading];
+    full[i + static_cast<long>(a) * leading] = full[i + static_cast<long>(b) * leading];
+    full[i + static_cast<long>(b) * leading] = t;
+  }
+  for (Index j = 0; j < width; ++j) {
+    const double t = full[a + static_cast<long>(j) * leading];
+    full[a + static_cast<long>(j) * leading] = full[b + static_cast<long>(j) * leading];
+    full[b + static_cast<long>(j) * leading] = t;
+  }
+  const Index t = permutation[a];
+  permutation[a] = permutation[b];
+  permutation[b] = t;
+}
+
+struct LargestEntries {
+  Index diagonal_at, row, column;
+  double diagonal, off_diagonal;
+  bool all_finite;
+};
+
+LargestEntries search(const double* full, Index leading, Index width, Index from) {
+  LargestEntries found{from, from, from, 0, 0, true};
+  for (Index j = from; j < width; ++j) {
+    const double* column = full + static_cast<long>(j) * leading;
+    if (!finite(column[j])) found.all_finite = false;
+    if (magnitude(column[j]) > found.diagonal) {
+      found.diagonal = magnitude(column[j]);
+      found.diagonal_at = j;
+    }
+    const double largest = abs_max(column + j + 1, width - j - 1);
+    if (!finite(largest)) found.all_finite = false;
+    if (largest > found.off_diagonal) {
+      found.off_diagonal = largest;
+      for (Index i = j + 1; i < width; ++i) {
+        if (magnitude(column[i]) == largest) {
+          found.row = i;
+          found.column = j;
+          break;
+        }
+      }
+    }
+  }
+  return found;
+}
+
+/// Row of multipliers through a 2x2 pivot [a b; b c]: x = (c/b f - g) / (b t), y = (a/b g - f) / (b t),
+/// t = (a/b)(c/b) - 1. Backward stable since |a|, |c| <= kTwoByTwoShare |b|.
+struct TwoByTwo {
+  double a_over_b, c_over_b, inverse;
+  TwoByTwo(double a, double b, double c) : a_over_b(a / b), c_over_b(c / b) {
+    inverse = 1 / (b * (a_over_b * c_over_b - 1));
+  }
+  double first(double f, double g) const { return (c_over_b * f - g) * inverse; }
+  double second(double f, double g) const { return (a_over_b * g - f) * inverse; }
+};
+
+void eliminate_one(double* full, Index leading, Index width, Index k, PivotArrays pivots) {
+  double* column = full + static_cast<long>(k) * leading;
+  const double pivot = column[k], inverse = 1 / pivot;
+  pivots.diagonal[k] = pivot;
+  pivots.off_diagonal[k] = 0;
+  pivots.kind[k] = PivotKind::kOne;
+  for (Index i = k + 1; i < width; ++i) {
+    full[k + static_cast<long>(i) * leading] = column[i];
+    column[i] *= inverse;
+  }
+  for (Index j = k + 1; j < width; ++j) {
+    double* target = full + static_cast<long>(j) * leading;
+    const double w = target[k];
+    for (Index i = k + 1; i < width; ++i) target[i] -= column[i] * w;
+  }
+}
+
+void eliminate_two(double* full, Index leading, Index width, Index k, PivotArrays pivots) {
+  double* first = full + static_cast<long>(k) * leading;
+  double* second = first + leading;
+  const double b = first[k + 1];
+  const TwoByTwo solve(first[k], b, second[k + 1]);
+  pivots.diagonal[k] = first[k];
+  pivots.diagonal[k + 1] = second[k + 1];
+  pivots.off_diagonal[k] = b;
+  pivots.off_diagonal[k + 1] = 0;
+  pivots.kind[k] = PivotKind::kTwoFirst;
+  pivots.kind[k + 1] = PivotKind::kTwoSecond;
+  for (Index i = k + 2; i < width; ++i) {
+    const double f = first[i], g = second[i];
+    full[k + static_cast<long>(i) * leading] = f;
+    full[k + 1 + static_cast<long>(i) * leading] = g;
+    first[i] = solve.first(f, g);
+    second[i] = solve.second(f, g);
+  }
+  first[k + 1] = 0;  // L is the identity inside the pivot
+  full[k + static_cast<long>(k + 1) * leading] = b;
+  for (Index j = k + 2; j < width; ++j) {
+    double* target = full + static_cast<long>(j) * leading;
+    const double f = target[k], g = target[k + 1];
+    for (Index i = k + 2; i < width; ++i) target[i] -= first[i] * f + second[i] * g;
+  }
+}
+
+Index factor_tile_pivoted(double* tile, Index leading, Index width, PivotArrays pivots, Index* permutation) {
+  for (Index j = 0; j < width; ++j) {
+    permutation[j] = j;
+    for (Index i = j + 1; i < width; ++i) tile[j + static_cast<long>(i) * leading] = tile[i + static_cast<long>(j) * leading];
+  }
+  Index k = 0;
+  while (k < width) {
+    const LargestEntries found = search(tile, leading, width, k);
+    if (!found.all_finite || (found.diagonal < kLeastPivot && found.off_diagonal < kLeastPivot)) break;
+    if (found.diagonal >= kTwoByTwoShare * found.off_diagonal) {
+      swap_rows_and_columns(tile, leading, width, k, found.diagonal_at, permutation);
+      eliminate_one(tile, leading, width, k, pivots);
+      k += 1;
+    } else {
+      swap_rows_and_columns(tile, leading, width, k, found.column, permutation);
+      const Index row = found.row == k ? found.column : found.row;
+      swap_rows_and_columns(tile, leading, width, k + 1, row, permutation);
+      eliminate_two(tile, leading, width, k, pivots);
+      k += 2;
+    }
+  }
+  return k;
+}
+
+void invert_unit_lower(const double* lower, Index leading, Index width, double* inverse, Index leading_inverse) {
+  for (Index c = 0; c < width; ++c) {
+    double* x = inverse + static_cast<long>(c) * leading_inverse;
+    for (Index i = 0; i < width; ++i) x[i] = 0;
+    x[c] = 1;
+    for (Index j = c; j < width; ++j) {
+      const double* column = lower + static_cast<long>(j) * leading;
+      const double factor = x[j];
+      if (factor == 0) continue;
+      for (Index i = j + 1; i < width; ++i) x[i] -= column[i] * factor;
+    }
+  }
+}
+
+void column_abs_max(const double* w, Index leading, Index rows, Index columns, double* out) {
+  for (Index k = 0; k < columns; ++k) out[k] = abs_max(w + static_cast<long>(k) * leading, rows);
+}
+
+void divide_pair(const double* f, const double* g, double* x, double* y, Index rows, const TwoByTwo& solve) {
+  for (Index i = 0; i < rows; ++i) {
+    x[i] = solve.first(f[i], g[i]);
+    y[i] = solve.second(f[i], g[i]);
+  }
+}
+
+void divide_by_pivots(const double* w, Index leading_w, double* l, Index leading_l, Index rows, Index columns,
+                      PivotArrays pivots, double* abs_sum) {
+  for (Index k = 0; k < columns; ++k) {
+    const double* f = w + static_cast<long>(k) * leading_w;
+    double* x = l + static_cast<long>(k) * leading_l;
+    if (pivots.kind[k] == PivotKind::kTwoFirst) {
+      divide_pair(f, f + leading_w, x, x + leading_l, rows,
+                  TwoByTwo(pivots.diagonal[k], pivots.off_diagonal[k], pivots.diagonal[k + 1]));
+      abs_sum[k] += abs_sum_of(x, rows);
+      abs_sum[k + 1] += abs_sum_of(x + leading_l, rows);
+      ++k;
+      continue;
+    }
+    const double inverse = pivots.kind[k] == PivotKind::kZero ? 0 : 1 / pivots.diagonal[k];
+    Lanes sum{};
+    Index i = 0;
+    for (; i + kLanes <= rows; i += kLanes) {
+      const Lanes v = load(f + i) * inverse;
+      store(x + i, v);
+      sum += magnitude(v);
+    }
+    double total = sum_of(sum);
+    for (; i < rows; ++i) {
+      x[i] = f[i] * inverse;
+      total += magnitude(x[i]);
+    }
+    abs_sum[k] += total;
+  }
+}
+
+/// Four columns at a time, so that the row sums are loaded and stored a quarter as often.
+void weighted_abs_sums(const double* a, Index leading, Index rows, Index columns, const double* weight,
+                       double* row_sum, double* column_sum) {
+  Index k = 0;
+  for (; k + 4 <= columns; k += 4) {
+    const double* column[4];
+    Lanes sum[4]{};
+    double w[4], tail[4]{};
+    for (int c = 0; c < 4; ++c) {
+      column[c] = a + static_cast<long>(k + c) * leading;
+      w[c] = weight[k + c];
+    }
+    Index i = 0;
+    for (; i + kLanes <= rows; i += kLanes) {
+      Lanes total = load(row_sum + i);
+      for (int c = 0; c < 4; ++c) {
+        const Lanes m = magnitude(load(column[c] + i));
+        total += m * w[c];
+        sum[c] += m;
+      }
+      store(row_sum + i, total);
+    }
+    for (; i < rows; ++i) {
+      for (int c = 0; c < 4; ++c) {
+        row_sum[i] += magnitude(column[c][i]) * w[c];
+        tail[c] += magnitude(column[c][i]);
+      }
+    }
+    for (int c = 0; column_sum && c < 4; ++c) column_sum[k + c] += sum_of(sum[c]) + tail[c];
+  }
+  for (; k < columns; ++k) {
+    const double* column = a + static_cast<long>(k) * leading;
+    for (Index i = 0; i < rows; ++i) row_sum[i] += magnitude(column[i]) * weight[k];
+    if (column_sum) column_sum[k] += abs_sum_of(column, rows);
+  }
+}
+
+double copy_with_abs_sums(const double* source, Index count, double* destination, double* row_sum) {
+  Lanes sum{};
+  Index i = 0;
+  for (; i + kLanes <= count; i += kLanes) {
+    const Lanes v = load(source + i), m = magnitude(v);
+    store(destination + i, v);
+    store(row_sum + i, load(row_sum + i) + m);
+    sum += m;
+  }
+  double total = sum_of(sum);
+  for (; i < count; ++i) {
+    const double value = source[i];
+    destination[i] = value;
+    row_sum[i] += magnitude(value);
+    total += magnitude(value);
+  }
+  return total;
+}
+
+}  // namespace
+
+namespace STANCHION_KERNEL_ISA {
+extern const Kernels table;
+const Kernels table{STANCHION_KERNEL_NAME, factor_tile,       factor_tile_pivoted, invert_unit_lower,
+                    column_abs_max,        divide_by_pivots,  weighted_abs_sums,   copy_with_abs_sums};
+}  // namespace STANCHION_KERNEL_ISA
+}  // namespace stanchion

@@ -1,0 +1,72 @@
+// The numeric phase: all pivots of a shifted matrix, and what they prove.
+#pragma once
+
+#include <optional>
+#include <vector>
+
+#include "base/cancellation.hpp"
+#include "base/threads.hpp"
+#include "dense/kernels.hpp"
+#include "sparse/matrix_family.hpp"
+#include "stanchion/status.hpp"
+#include "symbolic/analysis.hpp"
+
+namespace stanchion {
+
+struct FactorOptions {
+  bool definite = false;      ///< no pivoting, stop at the first pivot that is not positive
+  bool keep_factor = false;   ///< keep L and D for solves; otherwise panels are dropped once used
+  double pivot_threshold = 0.01;
+  std::optional<Offset> memory_cap_bytes;  ///< of the numeric phase
+  ProgressCallback progress;
+  const CancellationToken* cancel = nullptr;
+};
+
+/// One eliminated front: L (order x pivots, column-major, unit lower trapezoid), D, and the equations by position.
+struct FactorFront {
+  Index pivots = 0, order = 0;
+  Buffer<double> lower;
+  Buffer<double> diagonal, off_diagonal;
+  Buffer<PivotKind> kind;
+  Buffer<Index> position;  ///< of every row of the front
+};
+
+/// P A P^T = L D L^T + E. In processing order: a front's rows are pivots of itself or of later fronts.
+struct Factor {
+  Index rows = 0;
+  std::vector<FactorFront> fronts;
+};
+
+/// Signs of the pivots of one connected part; exact for L D L^T (Sylvester).
+struct PivotSigns {
+  Offset negative = 0, zero = 0, positive = 0;
+};
+
+struct Factorization {
+  bool stopped = false;     ///< definite attempt met a pivot that is not positive; counts are not valid
+  bool breakdown = false;   ///< overflow or pivots too small to divide by; counts are not valid
+  PivotSigns signs;
+  std::vector<PivotSigns> component_signs;  ///< per connected part
+  double error_bound = 0;   ///< proved: ||E||_2, forming of the matrix included
+  Offset delayed_pivots = 0, two_by_two_pivots = 0;
+  Offset peak_bytes = 0;    ///< of the numeric phase, as allocated
+  double seconds = 0;
+  std::optional<Factor> factor;
+};
+
+/// Factors `matrix` (in the elimination order of `analysis`). All threads of `pool` are used; the bits of the
+/// result do not depend on their number. Errors: interrupted; resource limit "memory-cap" with the figure reached,
+/// or "out-of-memory". Cost and memory: see Analysis::forecast. `pool` must not be in use.
+Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
+                                ThreadPool& pool);
+
+/// x = A^-1 b by the factor, for `columns` right-hand sides stored one after the other (each factor.rows long, in
+/// elimination order), in place. Zero pivots are an error "singular". Cost: 4 entries of L a column.
+Status solve(const Factor& factor, double* x, Index columns);
+
+/// Solves and refines: x with A x = b until the residual stops falling or `most_steps`. Returns the largest
+/// componentwise backward error max_i |b - A x|_i / (|A||x| + |b|)_i (Oettli and Prager) in *backward_error.
+Status solve_refined(const Factor& factor, const ShiftedMatrix& matrix, std::span<const double> b,
+                     std::span<double> x, int most_steps, double* backward_error);
+
+}  // namespace stanchion

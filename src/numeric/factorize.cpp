@@ -1,0 +1,176 @@
+#include <algorithm>
+#include <memory>
+#include <mutex>
+#include <new>
+#include <numeric>
+
+#include "base/clock.hpp"
+#include "dense/blas.hpp"
+#include "numeric/front_worker.hpp"
+
+namespace stanchion {
+namespace {
+
+/// Runs subtrees on single workers, then the shared fronts with everyone, and adds up what was counted.
+class Factorizer {
+ public:
+  Factorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options, ThreadPool& pool)
+      : run_{analysis, matrix, options, {}, {}, nullptr, {}, {}, {}, {}}, pool_(pool) {
+    const auto fronts = static_cast<std::size_t>(analysis.tree.fronts);
+    run_.children.resize(fronts);
+    run_.waiting.resize(fronts);
+    for (Index f = 0; f < analysis.tree.fronts; ++f) {
+      const Index parent = analysis.tree.parent[f];
+      if (parent >= 0) run_.children[static_cast<std::size_t>(parent)].push_back(f);
+    }
+  }
+
+  Result<Factorization> run() {
+    Stopwatch watch;
+    Factorization result;
+    if (run_.options.keep_factor) {
+      result.factor.emplace();
+      result.factor->rows = run_.analysis.tree.rows;
+      result.factor->fronts.resize(static_cast<std::size_t>(run_.analysis.tree.fronts));
+      run_.factor = &*result.factor;
+    }
+    result.component_signs.resize(static_cast<std::size_t>(run_.analysis.tree.components));
+    run_subtrees();
+    collect(result);
+    if (status_.ok() && !run_.abandon) {
+      run_shared_fronts();
+      collect(result);
+    }
+    if (!status_.ok()) return status_;
+    // Sums of non-negative terms of any practical length are covered by one part in a thousand.
+    result.error_bound *= 1.001;
+    result.peak_bytes = run_.peak_bytes;
+    result.seconds = watch.seconds();
+    return result;
+  }
+
+ private:
+  void fail(Status status) {
+    std::lock_guard lock(mutex_);
+    if (status_.ok()) status_ = std::move(status);
+    run_.abandon = true;
+  }
+
+  /// Processes one front and reports progress; false when the run is to end.
+  bool step(FrontWorker& worker, Index front, ThreadPool* team) {
+    if (run_.abandon) return false;
+    if (run_.options.cancel != nullptr && run_.options.cancel->cancelled()) {
+      fail(Status::interrupted());
+      return false;
+    }
+    try {
+      if (Status status = worker.process(front, team); !status.ok()) fail(std::move(status));
+    } catch (const std::bad_alloc&) {
+      fail(Status::resource_limit("out-of-memory", "the system has no more memory for the numeric phase", "",
+                                  "free memory, use fewer threads, or a machine with more memory"));
+    }
+    report_progress(front);
+    return !run_.abandon;
+  }
+
+  void report_progress(Index front) {
+    const AssemblyTree& tree = run_.analysis.tree;
+    const double flops = front_flops(tree.order(front), tree.pivots(front));
+    double done = run_.flops_done.load();
+    while (!run_.flops_done.compare_exchange_weak(done, done + flops)) {
+    }
+    if (!run_.options.progress) return;
+    std::unique_lock lock(progress_mutex_, std::try_to_lock);
+    if (lock.owns_lock()) {
+      run_.options.progress("factor", std::min(1.0, done / std::max(1.0, run_.analysis.forecast.front_flops)));
+    }
+  }
+
+  void run_subtrees() {
+    const Schedule& schedule = run_.analysis.schedule;
+    const auto count = schedule.subtrees.size();
+    std::vector<std::size_t> by_size(count);
+    std::iota(by_size.begin(), by_size.end(), std::size_t{0});
+    std::stable_sort(by_size.begin(), by_size.end(), [&](std::size_t a, std::size_t b) {
+      return schedule.subtrees[a].flops > schedule.subtrees[b].flops;
+    });
+    workers_.resize(static_cast<std::size_t>(pool_.size()));
+    pool_.run(static_cast<Offset>(count), [&](Offset piece, int worker) {
+      if (run_.abandon) return;
+      auto& mine = workers_[static_cast<std::size_t>(worker)];
+      const Subtree& subtree = schedule.subtrees[by_size[static_cast<std::size_t>(piece)]];
+      if (!mine && !start(mine, schedule.worker_arena_doubles)) return;
+      for (Index f = subtree.first; f < subtree.end; ++f) {
+        if (!step(*mine, f, nullptr)) return;
+      }
+      try {
+        if (Status status = mine->detach(subtree.end - 1); !status.ok()) fail(std::move(status));
+      } catch (const std::bad_alloc&) {
+        fail(Status::resource_limit("out-of-memory", "no memory for a contribution block", "", "free memory"));
+      }
+    });
+  }
+
+  bool start(std::unique_ptr<FrontWorker>& worker, Offset arena_doubles) {
+    try {
+      worker = std::make_unique<FrontWorker>(run_, arena_doubles);
+      return true;
+    } catch (const std::bad_alloc&) {
+      fail(Status::resource_limit("out-of-memory", "no address space for the stack of fronts", "",
+                                  "free memory or lift the limit on virtual memory"));
+      return false;
+    }
+  }
+
+  void run_shared_fronts() {
+    const Schedule& schedule = run_.analysis.schedule;
+    if (schedule.shared_fronts.empty()) return;
+    workers_.resize(1);
+    if (!start(workers_[0], schedule.shared_arena_doubles)) return;
+    for (const Index f : schedule.shared_fronts) {
+      if (!step(*workers_[0], f, &pool_)) return;
+    }
+  }
+
+  /// Adds the workers' counts to the result and lets them go.
+  void collect(Factorization& result) {
+    for (auto& worker : workers_) {
+      if (!worker) continue;
+      result.stopped = result.stopped || worker->stopped;
+      result.breakdown = result.breakdown || worker->breakdown;
+      result.delayed_pivots += worker->delayed_pivots;
+      result.two_by_two_pivots += worker->two_by_two_pivots;
+      if (!(worker->largest_row_error <= result.error_bound)) result.error_bound = worker->largest_row_error;
+      for (std::size_t c = 0; c < worker->signs.size(); ++c) {
+        const PivotSigns& mine = worker->signs[c];
+        for (PivotSigns* total : {&result.component_signs[c], &result.signs}) {
+          total->negative += mine.negative;
+          total->zero += mine.zero;
+          total->positive += mine.positive;
+        }
+      }
+    }
+    workers_.clear();
+  }
+
+  FactorRun run_;
+  ThreadPool& pool_;
+  std::vector<std::unique_ptr<FrontWorker>> workers_;
+  std::mutex mutex_, progress_mutex_;
+  Status status_;
+};
+
+}  // namespace
+
+Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
+                                ThreadPool& pool) {
+  use_single_threaded_blas();
+  try {
+    return Factorizer(analysis, matrix, options, pool).run();
+  } catch (const std::bad_alloc&) {
+    return Status::resource_limit("out-of-memory", "the system has no more memory for the numeric phase", "",
+                                  "free memory or use a machine with more memory");
+  }
+}
+
+}  // namespace stanchion

@@ -1,0 +1,119 @@
+// Gathers a front: entries of the matrix, then the children's contribution blocks in their fixed order.
+#include <algorithm>
+#include <cmath>
+
+#include "dense/trailing_update.hpp"
+#include "numeric/front_worker.hpp"
+
+namespace stanchion {
+namespace {
+
+constexpr double kUnit = 0x1p-53;
+constexpr Index kScatterColumns = 64;  ///< columns of a contribution block added as one piece
+
+/// Adds columns [begin, end) of the child to the front through `map` (child row -> front row).
+void scatter_columns(const Contribution& child, const Index* map, const BlockLower& front, Index begin, Index end) {
+  const BlockLower from{contribution_layout(child.order), child.values};
+  const bool ascending = child.delayed.empty();
+  for (Index j = begin; j < end; ++j) {
+    const double* source = from.column(j, j) - j;
+    const Index to = map[j];
+    if (ascending) {
+      double* target = front.column(to, to) - to;
+      for (Index i = j; i < child.order; ++i) target[map[i]] += source[i];
+    } else {
+      for (Index i = j; i < child.order; ++i) front.at(std::max(map[i], to), std::min(map[i], to)) += source[i];
+    }
+  }
+}
+
+}  // namespace
+
+FrontRows FrontWorker::list_rows(Index front) {
+  const AssemblyTree& tree = run_.analysis.tree;
+  FrontRows rows{front, tree.pivots(front), 0, 0};
+  label_.clear();
+  for (Index k = tree.first_column[front]; k < tree.first_column[Offset{front} + 1]; ++k) label_.push_back(k);
+  for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
+    const auto& delayed = run_.waiting[static_cast<std::size_t>(child)].delayed;
+    label_.insert(label_.end(), delayed.begin(), delayed.end());
+  }
+  rows.candidates = static_cast<Index>(label_.size());
+  for (Offset k = tree.row_start[front]; k < tree.row_start[Offset{front} + 1]; ++k) {
+    label_.push_back(tree.rows_below[k]);
+  }
+  rows.order = static_cast<Index>(label_.size());
+  for (Index i = 0; i < rows.order; ++i) local_of_[label_[static_cast<std::size_t>(i)]] = i;
+  return rows;
+}
+
+void FrontWorker::add_matrix_entries(const FrontRows& rows, const BlockLower& matrix) {
+  const MatrixFamily& family = *run_.matrix.family;
+  const Index first = run_.analysis.tree.first_column[rows.front];
+  const double offset = run_.matrix.offset;
+  for (Index j = 0; j < rows.own; ++j) {
+    const Index position = first + j;
+    for (Offset k = family.column_start[position]; k < family.column_start[Offset{position} + 1]; ++k) {
+      const Index row = family.row[k], i = local_of_[row];
+      double value = run_.matrix.entry(k, row, position);
+      double error = run_.matrix.entry_error(k, row, position);
+      if (i == j && offset != 0) {
+        value -= offset;
+        error += kUnit * std::fabs(value);
+      }
+      // The pivots of a front and its rows below ascend, so this entry lies in the lower triangle.
+      matrix.at(i, j) = value;
+      const double size = std::fabs(value);
+      addend_sums_[static_cast<std::size_t>(i)] += size;
+      row_error_[static_cast<std::size_t>(i)] += error;
+      if (i == j) continue;
+      addend_sums_[static_cast<std::size_t>(j)] += size;
+      row_error_[static_cast<std::size_t>(j)] += error;
+    }
+  }
+}
+
+void FrontWorker::add_contribution(const Contribution& child, const BlockLower& matrix, ThreadPool* team) {
+  const AssemblyTree& tree = run_.analysis.tree;
+  const Index front = static_cast<Index>(&child - run_.waiting.data());
+  map_.clear();
+  for (const Index position : child.delayed) map_.push_back(local_of_[position]);
+  for (Offset k = tree.row_start[front]; k < tree.row_start[Offset{front} + 1]; ++k) {
+    map_.push_back(local_of_[tree.rows_below[k]]);
+  }
+  for (Index i = 0; i < child.order; ++i) {
+    const auto to = static_cast<std::size_t>(map_[static_cast<std::size_t>(i)]);
+    row_error_[to] += child.row_error[i];
+    addend_sums_[to] += child.row_sums[i];
+    ++addends_[to];
+  }
+  const Index pieces = (child.order + kScatterColumns - 1) / kScatterColumns;
+  for_each_piece(team, pieces, [&](Offset piece) {
+    const Index begin = static_cast<Index>(piece) * kScatterColumns;
+    scatter_columns(child, map_.data(), matrix, begin, std::min(begin + kScatterColumns, child.order));
+  });
+}
+
+Status FrontWorker::assemble(const FrontRows& rows, const BlockLower& matrix, ThreadPool* team) {
+  const auto order = static_cast<std::size_t>(rows.order);
+  row_error_.assign(order, 0);
+  growth_.assign(order, 0);
+  addend_sums_.assign(order, 0);
+  addends_.assign(order, 0);
+  const BlockLayout& layout = matrix.layout;
+  for_each_piece(team, layout.blocks(), [&](Offset block) {
+    const auto b = static_cast<Index>(block);
+    double* begin = matrix.data + layout.block_offset(b);
+    const Offset columns = layout.block_end(b) - layout.block_begin(b);
+    std::fill(begin, begin + columns * layout.leading_dimension(b), 0.0);
+  });
+  add_matrix_entries(rows, matrix);
+  for (const Index child : run_.children[static_cast<std::size_t>(rows.front)]) {
+    add_contribution(run_.waiting[static_cast<std::size_t>(child)], matrix, team);
+  }
+  // Every addition to a row rounds a partial sum that is at most the sum of the addends' sizes.
+  for (std::size_t i = 0; i < order; ++i) row_error_[i] += kUnit * static_cast<double>(addends_[i]) * addend_sums_[i];
+  return {};
+}
+
+}  // namespace stanchion

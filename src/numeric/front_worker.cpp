@@ -1,0 +1,209 @@
+#include "numeric/front_worker.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <cstring>
+
+#include "dense/pivot_sign.hpp"
+#include "dense/trailing_update.hpp"
+
+namespace stanchion {
+namespace {
+
+constexpr double kUnit = 0x1p-53;
+/// Covers the divisions by pivots (2 u for 1x1, 16 u for 2x2, both sides) and the roundings of the sums themselves.
+constexpr Index kPivotRoundings = 40;
+
+Status memory_limit(Offset reached) {
+  return Status::resource_limit(
+      "memory-cap", "the numeric phase needs more memory than allowed; it had reached " +
+                        std::to_string(reached / (1024 * 1024)) + " MiB",
+      "", "raise --memory-cap, or use fewer threads");
+}
+
+/// True when every column of the block lands at or below the place it comes from, so that it can move over the
+/// children it has consumed, column by column, without a copy aside.
+bool moves_down(const BlockLower& from, Index first, const BlockLower& to) {
+  for (Index j = 0; j < to.layout.order; ++j) {
+    if (to.column(j, j) > from.column(first + j, first + j)) return false;
+  }
+  return true;
+}
+
+/// Copies rows and columns from `first` on, adding up row sums of absolute values (both triangles).
+void copy_columns(const BlockLower& from, Index first, const BlockLower& to, std::vector<double>& sums) {
+  const Index order = to.layout.order;
+  for (Index j = 0; j < order; ++j) {
+    const double* source = from.column(first + j, first + j);
+    double* target = to.column(j, j);
+    const double diagonal = source[0];
+    target[0] = diagonal;
+    const double below = kernels().copy_with_abs_sums(source + 1, order - j - 1, target + 1, sums.data() + j + 1);
+    sums[static_cast<std::size_t>(j)] += std::fabs(diagonal) + below;
+  }
+}
+
+}  // namespace
+
+bool FactorRun::book(Offset change) {
+  const Offset now = bytes.fetch_add(change) + change;
+  Offset seen = peak_bytes.load();
+  while (now > seen && !peak_bytes.compare_exchange_weak(seen, now)) {
+  }
+  return change <= 0 || !options.memory_cap_bytes || now <= *options.memory_cap_bytes;
+}
+
+FrontWorker::FrontWorker(FactorRun& run, Offset arena_doubles)
+    : signs(static_cast<std::size_t>(run.analysis.tree.components)),
+      run_(run),
+      arena_(arena_doubles),
+      local_of_(run.analysis.tree.rows) {
+  run_.book(local_of_.size() * Offset{sizeof(Index)});
+}
+
+FrontWorker::~FrontWorker() {
+  run_.book(-(booked_doubles_ + booked_scratch_) * Offset{sizeof(double)} - local_of_.size() * Offset{sizeof(Index)});
+}
+
+Status FrontWorker::book_arena() {
+  const Offset change = arena_.high_water() - booked_doubles_;
+  const Offset scratch = scratch_.scaled.size() - booked_scratch_;
+  if (change == 0 && scratch == 0) return {};
+  booked_doubles_ += change;
+  booked_scratch_ += scratch;
+  return run_.book((change + scratch) * Offset{sizeof(double)}) ? Status{} : memory_limit(run_.bytes.load());
+}
+
+Status FrontWorker::process(Index front, ThreadPool* team) {
+  const FrontRows rows = list_rows(front);
+  const BlockLayout layout = front_layout(rows.order);
+  double* storage = arena_.push(layout.size());
+  if (storage == nullptr) return memory_limit(run_.bytes.load());
+  if (Status booked = book_arena(); !booked.ok()) return booked;
+  const BlockLower matrix{layout, storage};
+  if (Status assembled = assemble(rows, matrix, team); !assembled.ok()) return assembled;
+
+  // The children's blocks are in the front now; those on this stack lie right below it.
+  double* base = storage;
+  for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
+    Contribution& done = run_.waiting[static_cast<std::size_t>(child)];
+    if (done.own.empty() && done.values != nullptr) base = std::min(base, done.values);
+    if (!done.own.empty()) run_.book(-done.own.size() * Offset{sizeof(double)});
+    done = Contribution{};
+  }
+  const auto candidates = static_cast<std::size_t>(rows.candidates);
+  diagonal_.resize(candidates);
+  off_diagonal_.resize(candidates);
+  kind_.resize(candidates);
+  const Front work{matrix,        rows.candidates,    {diagonal_.data(), off_diagonal_.data(), kind_.data()},
+                   label_.data(), row_error_.data(), growth_.data()};
+  const EliminationOptions options{run_.options.definite, run_.options.pivot_threshold, run_.factor != nullptr};
+  const EliminationResult result = eliminate_front(work, options, scratch_, team);
+  if (Status booked = book_arena(); !booked.ok()) return booked;
+  const bool stuck = run_.analysis.tree.parent[front] < 0 && result.eliminated < rows.candidates;
+  stopped = result.stopped;
+  breakdown = result.not_finite || (stuck && !stopped);
+  if (stopped || breakdown) {
+    run_.abandon = true;
+    return {};
+  }
+  const double gamma = kUnit * static_cast<double>(result.longest_sum + result.additions +
+                                                   std::min(rows.candidates, kTileWidth) + kPivotRoundings);
+  count_pivots(rows, result.eliminated, gamma);
+  two_by_two_pivots += result.two_by_two;
+  delayed_pivots += rows.candidates - result.eliminated;
+  if (run_.factor != nullptr) keep_panel(rows, matrix, result.eliminated);
+  pack(rows, matrix, result, gamma, base);
+  return {};
+}
+
+void FrontWorker::count_pivots(const FrontRows& rows, Index eliminated, double gamma) {
+  const SignCount count = sign_of_pivots({diagonal_.data(), off_diagonal_.data(), kind_.data()}, eliminated);
+  PivotSigns& total = signs[static_cast<std::size_t>(run_.analysis.tree.component[rows.front])];
+  total.negative += count.negative;
+  total.zero += count.zero;
+  total.positive += count.positive;
+  double largest_pivot = 0;
+  for (Index k = 0; k < eliminated; ++k) {
+    largest_pivot = std::max(largest_pivot, std::fabs(diagonal_[static_cast<std::size_t>(k)]));
+  }
+  // Underflow: every product or quotient may lose 2^-1075, seen through L and D of this front.
+  const double tiny = 0x1p-1060 * rows.order * (1 + largest_pivot);
+  for (Index k = 0; k < eliminated; ++k) {
+    const auto i = static_cast<std::size_t>(k);
+    const double bound = row_error_[i] + gamma * growth_[i] + tiny;
+    // A NaN must not pass for a small number.
+    if (!(bound <= largest_row_error)) largest_row_error = bound;
+  }
+}
+
+void FrontWorker::keep_panel(const FrontRows& rows, const BlockLower& matrix, Index eliminated) {
+  FactorFront& kept = run_.factor->fronts[static_cast<std::size_t>(rows.front)];
+  kept.pivots = eliminated;
+  kept.order = rows.order;
+  kept.lower = Buffer<double>(Offset{rows.order} * eliminated);
+  kept.diagonal = Buffer<double>(eliminated);
+  kept.off_diagonal = Buffer<double>(eliminated);
+  kept.kind = Buffer<PivotKind>(eliminated);
+  kept.position = Buffer<Index>(rows.order);
+  std::copy_n(label_.begin(), rows.order, kept.position.begin());
+  for (Index k = 0; k < eliminated; ++k) {
+    double* target = kept.lower.data() + Offset{k} * rows.order;
+    std::fill(target, target + k, 0.0);
+    std::copy_n(matrix.column(k, k), rows.order - k, target + k);
+    target[k] = 1;
+    kept.diagonal[k] = diagonal_[static_cast<std::size_t>(k)];
+    kept.off_diagonal[k] = off_diagonal_[static_cast<std::size_t>(k)];
+    kept.kind[k] = kind_[static_cast<std::size_t>(k)];
+  }
+  run_.book(kept.lower.size() * Offset{sizeof(double)});
+}
+
+void FrontWorker::pack(const FrontRows& rows, const BlockLower& matrix, const EliminationResult& result, double gamma,
+                       double* destination) {
+  const Index eliminated = result.eliminated, order = rows.order - eliminated;
+  arena_.pop_to(destination);
+  if (order == 0) return;
+  Contribution& out = run_.waiting[static_cast<std::size_t>(rows.front)];
+  out.order = order;
+  out.delayed.assign(label_.begin() + eliminated, label_.begin() + rows.candidates);
+  const BlockLayout layout = contribution_layout(order);
+  // Row sums go to scratch first because their final place may still hold entries.
+  std::vector<double>& sums = addend_sums_;
+  sums.assign(static_cast<std::size_t>(order), 0);
+  const BlockLower to{layout, destination};
+  if (moves_down(matrix, eliminated, to)) {
+    copy_columns(matrix, eliminated, to, sums);
+  } else {
+    Buffer<double> aside(layout.size());
+    copy_columns(matrix, eliminated, {layout, aside.data()}, sums);
+    std::memcpy(destination, aside.data(), static_cast<std::size_t>(layout.size()) * sizeof(double));
+  }
+  out.values = arena_.push(contribution_doubles(order));
+  out.row_error = out.values + layout.size();
+  out.row_sums = out.row_error + order;
+  const double gamma_sum = kUnit * static_cast<double>(result.additions + 2);
+  for (Index i = 0; i < order; ++i) {
+    const auto from = static_cast<std::size_t>(eliminated + i);
+    const double sum = sums[static_cast<std::size_t>(i)];
+    out.row_error[i] = row_error_[from] + gamma * growth_[from] + gamma_sum * sum;
+    out.row_sums[i] = sum;
+  }
+}
+
+Status FrontWorker::detach(Index front) {
+  Contribution& block = run_.waiting[static_cast<std::size_t>(front)];
+  if (block.values == nullptr) return {};
+  const Offset doubles = contribution_doubles(block.order);
+  block.own = Buffer<double>(doubles);
+  if (!run_.book(doubles * Offset{sizeof(double)})) return memory_limit(run_.bytes.load());
+  std::memcpy(block.own.data(), block.values, static_cast<std::size_t>(doubles) * sizeof(double));
+  const Offset shift = block.row_error - block.values;
+  block.values = block.own.data();
+  block.row_error = block.values + shift;
+  block.row_sums = block.row_error + block.order;
+  arena_.pop_to(arena_.top() - arena_.used());
+  return {};
+}
+
+}  // namespace stanchion

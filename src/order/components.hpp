@@ -1,0 +1,18 @@
+// Connected parts of a graph.
+#pragma once
+
+#include "order/graph.hpp"
+
+namespace stanchion {
+
+/// Part number of every vertex, parts numbered by their lowest vertex. Cost: one pass over the edges.
+struct Components {
+  Index count = 0;
+  Buffer<Index> component_of;
+};
+Components connected_components(const Graph& graph);
+
+/// The subgraph on `vertices` (ascending), renumbered 0, 1, ... in that order; every edge must stay inside.
+Graph subgraph(const Graph& graph, const Buffer<Index>& local_number, const Index* vertices, Index count);
+
+}  // namespace stanchion

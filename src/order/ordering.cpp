@@ -1,0 +1,162 @@
+#include "order/ordering.hpp"
+
+#include <algorithm>
+#include <vector>
+
+#include "order/column_counts.hpp"
+#include "order/components.hpp"
+#include "order/dissection.hpp"
+#include "order/elimination_tree.hpp"
+#include "order/minimum_degree.hpp"
+
+namespace stanchion {
+namespace {
+
+constexpr Index kDissectAbove = 120;     // smaller parts: minimum degree alone
+constexpr Index kTryBothUpTo = 20'000;   // minimum degree is then a small part of the time
+constexpr double kThinDegree = 3.0;      // chains and trees: dissection only adds fill
+
+Buffer<Index> inverse_of(const Buffer<Index>& permutation) {
+  Buffer<Index> inverse(permutation.size());
+  for (Offset k = 0; k < permutation.size(); ++k) inverse[permutation[k]] = static_cast<Index>(k);
+  return inverse;
+}
+
+/// Operations of the factorization under this order.
+double predicted_flops(const Graph& graph, const Buffer<Index>& vertex_at) {
+  const Buffer<Index> parent = elimination_tree(graph, vertex_at, inverse_of(vertex_at));
+  const Buffer<Index> post = postorder(parent);
+  const Buffer<Index> rank = inverse_of(post);
+  Buffer<Index> ordered(post.size()), ordered_parent(post.size());
+  for (Offset k = 0; k < post.size(); ++k) {
+    ordered[k] = vertex_at[post[k]];
+    ordered_parent[k] = parent[post[k]] < 0 ? -1 : rank[parent[post[k]]];
+  }
+  return factor_flops(graph, ordered, column_counts(graph, ordered, inverse_of(ordered), ordered_parent));
+}
+
+struct PartOrder {
+  Buffer<Index> vertex_at;
+  bool dissected = false;
+};
+
+Result<PartOrder> order_part(const Graph& part) {
+  const double degree = static_cast<double>(part.adjacency.size()) / std::max<double>(1, part.vertices);
+  const bool dissect = part.vertices > kDissectAbove;
+  const bool minimum = !dissect || part.vertices <= kTryBothUpTo || degree <= kThinDegree;
+  PartOrder best;
+  if (minimum) {
+    auto order = minimum_degree(part);
+    if (!order.ok()) return order.status();
+    best.vertex_at = std::move(*order);
+  }
+  if (dissect) {
+    auto order = nested_dissection(part);
+    if (!order.ok()) return order.status();
+    if (!minimum || predicted_flops(part, *order) < predicted_flops(part, best.vertex_at)) {
+      best = {std::move(*order), true};
+    }
+  }
+  return best;
+}
+
+/// Equations that share both a node group and a neighbourhood group.
+Grouping intersect(const Grouping& coarse, const Grouping& fine) {
+  const auto rows = static_cast<Index>(coarse.group_of.size());
+  std::vector<std::pair<Index, Index>> key(static_cast<std::size_t>(rows));
+  std::vector<Index> order(static_cast<std::size_t>(rows));
+  for (Index i = 0; i < rows; ++i) {
+    key[static_cast<std::size_t>(i)] = {coarse.group_of[i], fine.group_of[i]};
+    order[static_cast<std::size_t>(i)] = i;
+  }
+  std::stable_sort(order.begin(), order.end(), [&](Index a, Index b) {
+    return key[static_cast<std::size_t>(a)] < key[static_cast<std::size_t>(b)];
+  });
+  Grouping grouping{0, Buffer<Index>(rows)};
+  for (std::size_t k = 0; k < order.size(); ++k) {
+    const bool same = k > 0 && key[static_cast<std::size_t>(order[k])] == key[static_cast<std::size_t>(order[k - 1])];
+    if (!same) ++grouping.groups;
+    grouping.group_of[order[k]] = grouping.groups - 1;
+  }
+  return grouping;
+}
+
+/// Orders each connected part of `graph` and strings the parts together.
+Result<Buffer<Index>> order_parts(const Graph& graph, const Components& components, Index& dissected) {
+  std::vector<std::vector<Index>> members(static_cast<std::size_t>(components.count));
+  Buffer<Index> local(graph.vertices);
+  for (Index v = 0; v < graph.vertices; ++v) {
+    auto& list = members[static_cast<std::size_t>(components.component_of[v])];
+    local[v] = static_cast<Index>(list.size());
+    list.push_back(v);
+  }
+  Buffer<Index> vertex_at(graph.vertices);
+  Index used = 0;
+  for (const auto& list : members) {
+    if (list.size() == 1) {
+      vertex_at[used++] = list.front();
+      continue;
+    }
+    auto part = order_part(subgraph(graph, local, list.data(), static_cast<Index>(list.size())));
+    if (!part.ok()) return part.status();
+    dissected += part->dissected ? 1 : 0;
+    for (const Index v : part->vertex_at) vertex_at[used++] = list[static_cast<std::size_t>(v)];
+  }
+  return vertex_at;
+}
+
+std::vector<char> zero_diagonals(const SymmetricMatrix& pattern) {
+  std::vector<char> zero(static_cast<std::size_t>(pattern.rows), 1);
+  for (Index j = 0; j < pattern.rows; ++j) {
+    const Offset first = pattern.column_start[j];
+    if (first < pattern.column_start[Offset{j} + 1] && pattern.row[first] == j && pattern.value[first] != 0) {
+      zero[static_cast<std::size_t>(j)] = 0;
+    }
+  }
+  return zero;
+}
+
+}  // namespace
+
+Result<Elimination> order_equations(const OrderingInput& input) {
+  const SymmetricMatrix& pattern = *input.pattern;
+  const Grouping alike = group_by_neighbourhood(pattern);
+  const std::vector<char> zero = zero_diagonals(pattern);
+  const bool joins = input.zero_diagonals_join && std::find(zero.begin(), zero.end(), 1) != zero.end();
+  const bool nodes_known = !input.node_of.empty();
+  Grouping coarse{alike.groups, alike.group_of.clone()};
+  if (nodes_known) coarse = group_by_node(pattern.rows, input.node_of);
+  if (joins) coarse = join_zero_diagonals(pattern, std::move(coarse), zero);
+
+  Elimination elimination;
+  Graph coarse_graph = quotient_graph(pattern, coarse);
+  const Components components = connected_components(coarse_graph);
+  elimination.components = components.count;
+  auto coarse_order = order_parts(coarse_graph, components, elimination.dissected);
+  if (!coarse_order.ok()) return coarse_order.status();
+  if (!nodes_known && !joins) {
+    elimination.graph = std::move(coarse_graph);
+    elimination.grouping = std::move(coarse);
+    elimination.vertex_at = std::move(*coarse_order);
+    elimination.component_of_vertex = components.component_of.clone();
+    return elimination;
+  }
+  // Eliminate node by node, but keep the exact structure inside a node (a plate's membrane and bending parts).
+  elimination.grouping = intersect(coarse, alike);
+  elimination.graph = quotient_graph(pattern, elimination.grouping);
+  const Buffer<Index> coarse_position = inverse_of(*coarse_order);
+  Buffer<Index> coarse_of(elimination.grouping.groups);
+  for (Index i = 0; i < pattern.rows; ++i) coarse_of[elimination.grouping.group_of[i]] = coarse.group_of[i];
+  elimination.vertex_at = Buffer<Index>(elimination.grouping.groups);
+  for (Index v = 0; v < elimination.grouping.groups; ++v) elimination.vertex_at[v] = v;
+  std::stable_sort(elimination.vertex_at.begin(), elimination.vertex_at.end(), [&](Index a, Index b) {
+    return coarse_position[coarse_of[a]] < coarse_position[coarse_of[b]];
+  });
+  elimination.component_of_vertex = Buffer<Index>(elimination.grouping.groups);
+  for (Index v = 0; v < elimination.grouping.groups; ++v) {
+    elimination.component_of_vertex[v] = components.component_of[coarse_of[v]];
+  }
+  return elimination;
+}
+
+}  // namespace stanchion

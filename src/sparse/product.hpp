@@ -1,0 +1,19 @@
+// Products and norms of a shifted, scaled family.
+#pragma once
+
+#include <span>
+
+#include "sparse/matrix_family.hpp"
+
+namespace stanchion {
+
+/// y = A x for the matrix as formed (scaled, offset included). Cost: one pass over the entries.
+void multiply(const ShiftedMatrix& matrix, std::span<const double> x, std::span<double> y);
+
+/// y_i = sum_j |a_ij| |x_j|.
+void multiply_absolute(const ShiftedMatrix& matrix, std::span<const double> x, std::span<double> y);
+
+/// Largest row sum of |A|.
+double infinity_norm(const ShiftedMatrix& matrix);
+
+}  // namespace stanchion

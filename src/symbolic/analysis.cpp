@@ -1,0 +1,35 @@
+#include "symbolic/analysis.hpp"
+
+#include <algorithm>
+
+#include "base/clock.hpp"
+
+namespace stanchion {
+
+Result<Analysis> analyse(const OrderingInput& input, int workers) {
+  Analysis analysis;
+  Stopwatch watch;
+  auto elimination = order_equations(input);
+  if (!elimination.ok()) return elimination.status();
+  analysis.order_seconds = watch.seconds();
+  watch.restart();
+  const SupernodeTree supernodes = build_supernodes(*elimination);
+  analysis.tree = build_assembly_tree(*elimination, supernodes);
+  analysis.schedule = make_schedule(analysis.tree, workers);
+  StructureForecast& forecast = analysis.forecast;
+  forecast.factor_entries = supernodes.factor_entries;
+  forecast.factor_flops = supernodes.flops;
+  for (Index f = 0; f < analysis.tree.fronts; ++f) {
+    const Offset order = analysis.tree.order(f), pivots = analysis.tree.pivots(f);
+    forecast.front_flops += front_flops(analysis.tree.order(f), analysis.tree.pivots(f));
+    forecast.stored_factor_entries += pivots * order;
+    forecast.largest_front = std::max(forecast.largest_front, analysis.tree.order(f));
+  }
+  constexpr Offset kDouble = sizeof(double);
+  forecast.peak_bytes_count = analysis.schedule.peak_doubles * kDouble;
+  forecast.peak_bytes_solve = forecast.peak_bytes_count + forecast.stored_factor_entries * kDouble;
+  analysis.analyse_seconds = watch.seconds();
+  return analysis;
+}
+
+}  // namespace stanchion

@@ -1,0 +1,32 @@
+// Everything that depends on the pattern alone: made once, used for every shift and every matrix of the pattern.
+#pragma once
+
+#include "order/ordering.hpp"
+#include "symbolic/assembly_tree.hpp"
+#include "symbolic/schedule.hpp"
+
+namespace stanchion {
+
+/// Sizes known before anything is factored.
+struct StructureForecast {
+  Offset factor_entries = 0;  ///< of L, diagonal included, without relaxation zeros
+  double factor_flops = 0;    ///< without relaxation zeros
+  double front_flops = 0;     ///< as executed, relaxation zeros included
+  Offset stored_factor_entries = 0;  ///< as kept in solve mode, relaxation zeros included
+  Index largest_front = 0;
+  Offset peak_bytes_count = 0;  ///< numeric phase, factor discarded
+  Offset peak_bytes_solve = 0;  ///< numeric phase, factor kept
+};
+
+struct Analysis {
+  AssemblyTree tree;
+  Schedule schedule;
+  StructureForecast forecast;
+  double order_seconds = 0, analyse_seconds = 0;
+};
+
+/// Orders, counts, amalgamates and schedules. Errors: those of order_equations. Reproducible; the tree does not
+/// depend on `workers`, only the schedule does.
+Result<Analysis> analyse(const OrderingInput& input, int workers);
+
+}  // namespace stanchion

@@ -1,0 +1,121 @@
+#include "symbolic/schedule.hpp"
+
+#include <algorithm>
+#include <queue>
+
+#include "dense/block_lower.hpp"
+
+namespace stanchion {
+namespace {
+
+/// A front below this many operations is not worth sharing among workers.
+constexpr double kShareFlops = 2e7;
+/// Subtrees per worker aimed at, so that the last ones to finish leave little idle time.
+constexpr double kSubtreesPerWorker = 4;
+
+struct TreeShape {
+  std::vector<double> subtree_flops;
+  std::vector<Index> first;  ///< first front of the subtree rooted here
+  std::vector<std::vector<Index>> children;
+  std::vector<Index> roots;
+};
+
+TreeShape shape_of(const AssemblyTree& tree) {
+  const auto count = static_cast<std::size_t>(tree.fronts);
+  TreeShape shape{std::vector<double>(count), std::vector<Index>(count), std::vector<std::vector<Index>>(count), {}};
+  for (Index f = 0; f < tree.fronts; ++f) {
+    const auto i = static_cast<std::size_t>(f);
+    const auto& mine = shape.children[i];
+    shape.first[i] = mine.empty() ? f : shape.first[static_cast<std::size_t>(mine.front())];
+    shape.subtree_flops[i] += front_flops(tree.order(f), tree.pivots(f));
+    if (tree.parent[f] < 0) {
+      shape.roots.push_back(f);
+    } else {
+      shape.children[static_cast<std::size_t>(tree.parent[f])].push_back(f);
+      shape.subtree_flops[static_cast<std::size_t>(tree.parent[f])] += shape.subtree_flops[i];
+    }
+  }
+  return shape;
+}
+
+Offset front_doubles(const AssemblyTree& tree, Index f) { return front_layout(tree.order(f)).size(); }
+Offset result_doubles(const AssemblyTree& tree, Index f) { return contribution_doubles(tree.below(f)); }
+
+/// High-water mark of a last-in-first-out stack over the fronts named, in order.
+template <class Fronts>
+Offset stack_peak(const AssemblyTree& tree, const Fronts& fronts, const std::vector<char>& on_this_stack) {
+  std::vector<Offset> waiting(static_cast<std::size_t>(tree.fronts), 0);
+  Offset top = 0, peak = 0;
+  for (const Index f : fronts) {
+    peak = std::max(peak, top + front_doubles(tree, f));
+    top += result_doubles(tree, f) - waiting[static_cast<std::size_t>(f)];
+    const Index up = tree.parent[f];
+    if (up >= 0 && on_this_stack[static_cast<std::size_t>(up)]) {
+      waiting[static_cast<std::size_t>(up)] += result_doubles(tree, f);
+    }
+  }
+  return peak;
+}
+
+}  // namespace
+
+double front_flops(Index order, Index pivots) {
+  const double m = order, rest = order - pivots;
+  return (m * (m + 1) * (2 * m + 1) - rest * (rest + 1) * (2 * rest + 1)) / 6;
+}
+
+Schedule make_schedule(const AssemblyTree& tree, int workers) {
+  const TreeShape shape = shape_of(tree);
+  Schedule schedule;
+  schedule.workers = workers;
+  double total = 0;
+  for (const Index root : shape.roots) total += shape.subtree_flops[static_cast<std::size_t>(root)];
+  const double target = workers > 1 ? total / (kSubtreesPerWorker * workers) : total;
+  std::vector<char> shared(static_cast<std::size_t>(tree.fronts), 0);
+  std::vector<Index> open = shape.roots;
+  while (!open.empty()) {
+    const Index f = open.back();
+    open.pop_back();
+    const auto i = static_cast<std::size_t>(f);
+    const bool split = workers > 1 && shape.subtree_flops[i] > target &&
+                       front_flops(tree.order(f), tree.pivots(f)) > kShareFlops;
+    if (split) {
+      shared[i] = 1;
+      open.insert(open.end(), shape.children[i].begin(), shape.children[i].end());
+    } else {
+      schedule.subtrees.push_back({shape.first[i], f + 1, shape.subtree_flops[i], 0, 0});
+    }
+  }
+  std::sort(schedule.subtrees.begin(), schedule.subtrees.end(),
+            [](const Subtree& a, const Subtree& b) { return a.first < b.first; });
+
+  Offset results = 0;
+  std::vector<Index> fronts;
+  std::vector<char> inside(static_cast<std::size_t>(tree.fronts), 0);
+  for (Subtree& subtree : schedule.subtrees) {
+    fronts.clear();
+    for (Index f = subtree.first; f < subtree.end; ++f) {
+      fronts.push_back(f);
+      inside[static_cast<std::size_t>(f)] = 1;
+    }
+    subtree.arena_doubles = stack_peak(tree, fronts, inside);
+    subtree.result_doubles = result_doubles(tree, subtree.end - 1);
+    schedule.worker_arena_doubles = std::max(schedule.worker_arena_doubles, subtree.arena_doubles);
+    results += subtree.result_doubles;
+    for (const Index f : fronts) inside[static_cast<std::size_t>(f)] = 0;
+  }
+  Index largest = 0, widest = 0;
+  for (Index f = 0; f < tree.fronts; ++f) {
+    if (shared[static_cast<std::size_t>(f)]) schedule.shared_fronts.push_back(f);
+    largest = std::max(largest, tree.order(f));
+    widest = std::max(widest, tree.pivots(f));
+  }
+  schedule.shared_arena_doubles = stack_peak(tree, schedule.shared_fronts, shared);
+  schedule.panel_doubles = Offset{largest} * std::min<Index>(widest, kFrontBlock);
+  const int busy = static_cast<int>(std::min<std::size_t>(static_cast<std::size_t>(workers), schedule.subtrees.size()));
+  schedule.peak_doubles = busy * (schedule.worker_arena_doubles + schedule.panel_doubles) + results +
+                          (schedule.shared_fronts.empty() ? 0 : schedule.shared_arena_doubles + schedule.panel_doubles);
+  return schedule;
+}
+
+}  // namespace stanchion

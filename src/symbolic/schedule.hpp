@@ -1,0 +1,35 @@
+// Which fronts run as whole subtrees on one worker, which are shared by all, and the memory both need.
+#pragma once
+
+#include <vector>
+
+#include "symbolic/assembly_tree.hpp"
+
+namespace stanchion {
+
+/// Half-open range of fronts: a subtree is contiguous in processing order, its root is the last.
+struct Subtree {
+  Index first = 0, end = 0;
+  double flops = 0;
+  Offset arena_doubles = 0;   ///< high-water mark of its stack of fronts and contribution blocks
+  Offset result_doubles = 0;  ///< the root's contribution block, kept until its parent is assembled
+};
+
+struct Schedule {
+  int workers = 1;
+  std::vector<Subtree> subtrees;    ///< in processing order
+  std::vector<Index> shared_fronts; ///< the rest, in processing order, each worked on by all
+  Offset worker_arena_doubles = 0;  ///< largest of the subtrees
+  Offset shared_arena_doubles = 0;  ///< stack of the shared fronts
+  Offset panel_doubles = 0;         ///< scratch of the largest front
+  Offset peak_doubles = 0;          ///< bound on everything alive at once
+};
+
+/// Subtrees small enough to balance over `workers`; one worker gets one subtree per root.
+/// The arithmetic of every front is the same wherever it runs. Cost: linear in the fronts.
+Schedule make_schedule(const AssemblyTree& tree, int workers);
+
+/// Operations of one front with `pivots` of `order` rows eliminated.
+double front_flops(Index order, Index pivots);
+
+}  // namespace stanchion
