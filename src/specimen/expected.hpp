@@ -35,8 +35,15 @@ struct ExpectedValue {
   std::string why;
 };
 
+/// With multipliers: the structure on its constraints.
+struct ExpectedConstrained {
+  Index multipliers = 0, rank = 0, redundant = 0;
+  Index negative = 0, zero = 0, positive = 0;
+};
+
 struct Expected {
   ExpectedInertia inertia;
+  std::optional<ExpectedConstrained> constrained;
   std::vector<ExpectedCount> counts;
   std::vector<ExpectedValue> values;
 };

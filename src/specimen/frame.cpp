@@ -2,8 +2,8 @@
 #include <algorithm>
 #include <cmath>
 
-#include "specimen/beam.hpp"
 #include "specimen/faults.hpp"
+#include "specimen/member_part.hpp"
 #include "specimen/models.hpp"
 
 namespace stanchion::specimen {
@@ -28,16 +28,9 @@ FrameMesh mesh_for(Offset unknowns) {
   return mesh;
 }
 
-/// A member of the frame between two nodes of the regular grid.
-struct FrameMember {
-  Index start = 0, end = 0;
-  Member line;
-  double axial_force = 0;  ///< N under the reference load, tension positive
-};
-
 /// Columns with the load of the floors above them: each node carries the area halfway to its neighbours.
-std::vector<FrameMember> columns_of(const FrameMesh& mesh, const DofTable& table) {
-  std::vector<FrameMember> columns;
+std::vector<PlacedMember> columns_of(const FrameMesh& mesh, const DofTable& table) {
+  std::vector<PlacedMember> columns;
   for (Index floor = 0; floor < mesh.storeys; ++floor) {
     for (Index j = 0; j <= mesh.bays_y; ++j) {
       for (Index i = 0; i <= mesh.bays_x; ++i) {
@@ -51,65 +44,35 @@ std::vector<FrameMember> columns_of(const FrameMesh& mesh, const DofTable& table
   return columns;
 }
 
-std::vector<FrameMember> beams_of(const FrameMesh& mesh, const DofTable& table) {
-  std::vector<FrameMember> beams;
-  const auto add = [&](Index a, Index b) {
-    beams.push_back({a, b, {table.place(a), table.place(b), {0, 0, 1}}, 0});
-  };
+/// The beams along x (or, with `across`, along y) of all floors.
+std::vector<PlacedMember> beams_of(const FrameMesh& mesh, const DofTable& table, bool across) {
+  std::vector<PlacedMember> beams;
   for (Index floor = 1; floor <= mesh.storeys; ++floor) {
-    for (Index j = 0; j <= mesh.bays_y; ++j) {
-      for (Index i = 0; i <= mesh.bays_x; ++i) {
-        if (i < mesh.bays_x) add(mesh.node(i, j, floor), mesh.node(i + 1, j, floor));
-        if (j < mesh.bays_y) add(mesh.node(i, j, floor), mesh.node(i, j + 1, floor));
+    for (Index j = 0; j <= mesh.bays_y - (across ? 1 : 0); ++j) {
+      for (Index i = 0; i <= mesh.bays_x - (across ? 0 : 1); ++i) {
+        const Index a = mesh.node(i, j, floor);
+        const Index b = across ? mesh.node(i, j + 1, floor) : mesh.node(i + 1, j, floor);
+        beams.push_back({a, b, {table.place(a), table.place(b), {0, 0, 1}}, 0});
       }
     }
   }
   return beams;
 }
 
-/// One part of members of one section; `pinned` makes bars of them, which turn freely at both ends.
-Part part_of(const std::vector<FrameMember>& members, const Section& section, MassKind mass, bool pinned) {
-  Part part{2, kAllSix, {}, {}, {}, {}};
-  for (const FrameMember& member : members) part.nodes.insert(part.nodes.end(), {member.start, member.end});
-  auto shared = std::make_shared<const std::vector<FrameMember>>(members);
-  const auto filling = [shared](auto matrix_of) {
-    return [shared, matrix_of](Offset e, std::span<double> out) {
-      const ElementMatrix<12> matrix = matrix_of((*shared)[static_cast<std::size_t>(e)]);
-      std::copy(matrix.entry.begin(), matrix.entry.end(), out.begin());
-    };
-  };
-  const Coupling all = full_coupling(kAllSix);
-  part.stiffness = PartMatrix{
-      pinned ? full_coupling(kDisplacements) : all, filling([=](const FrameMember& m) {
-        return pinned ? bar_stiffness(m.line, kSteel, section) : beam_stiffness(m.line, kSteel, section);
-      })};
-  part.mass = PartMatrix{all, filling([=](const FrameMember& m) {
-                           return pinned || mass == MassKind::kLumped
-                                      ? beam_lumped_mass(m.line, kSteel, section)
-                                      : beam_mass(m.line, kSteel, section);
-                         })};
-  const bool loaded =
-      std::any_of(members.begin(), members.end(), [](const FrameMember& m) { return m.axial_force != 0; });
-  if (loaded) {
-    part.geometric = PartMatrix{all, filling([=](const FrameMember& m) {
-                                  return pinned ? bar_geometric(m.line, m.axial_force)
-                                                : beam_geometric(m.line, m.axial_force);
-                                })};
-  }
-  return part;
-}
-
 void add_members(Model& model, const FrameMesh& mesh, const SpecimenOptions& options) {
-  std::vector<FrameMember> columns = columns_of(mesh, model.table), pinned;
+  std::vector<PlacedMember> columns = columns_of(mesh, model.table), pinned;
   if (options.fault == Fault::kHinge) {
     const auto floor = static_cast<std::ptrdiff_t>((mesh.bays_x + 1) * (mesh.bays_y + 1));
     const auto first = columns.begin() + mesh.storeys / 2 * floor;
     pinned.assign(first, first + floor);
     columns.erase(first, first + floor);
   }
-  if (!columns.empty()) model.parts.push_back(part_of(columns, kColumn, options.mass, false));
-  if (!pinned.empty()) model.parts.push_back(part_of(pinned, kColumn, options.mass, true));
-  model.parts.push_back(part_of(beams_of(mesh, model.table), kBeam, options.mass, false));
+  const MemberKind column{kSteel, kColumn, false, options.mass}, pin{kSteel, kColumn, true, options.mass};
+  const MemberKind beam{kSteel, kBeam, false, options.mass};
+  if (!columns.empty()) model.parts.push_back(member_part(std::move(columns), column));
+  if (!pinned.empty()) model.parts.push_back(member_part(std::move(pinned), pin));
+  model.parts.push_back(member_part(beams_of(mesh, model.table, false), beam));
+  model.parts.push_back(member_part(beams_of(mesh, model.table, true), beam));
 }
 
 /// The four roof beams over the first corner bay get their own nodes.

@@ -8,6 +8,9 @@ namespace stanchion::specimen {
 Result<Specimen> make_solid(Offset unknowns, const SpecimenOptions& options);
 Result<Specimen> make_plate(Offset unknowns, const SpecimenOptions& options);
 Result<Specimen> make_frame(Offset unknowns, const SpecimenOptions& options);
+Result<Specimen> make_column(Offset unknowns, const SpecimenOptions& options);
+Result<Specimen> make_saddle(Offset unknowns, const SpecimenOptions& options);
+Result<Specimen> make_lattice(Offset unknowns, const SpecimenOptions& options);
 Result<Specimen> make_laplace(Offset unknowns, const SpecimenOptions& options);
 
 }  // namespace stanchion::specimen

@@ -19,11 +19,18 @@ constexpr std::array kList{
                   "none free loose-part soft-spring negative-spring"},
     SpecimenEntry{"frame", "space frame of several storeys under its floors, 6 unknowns a node; K, G, M",
                   "none free loose-part hinge soft-spring negative-spring"},
+    SpecimenEntry{"lattice", "footbridge of two trusses over a harbour lock, under a crowd; K, G, M",
+                  "none free loose-part negative-spring"},
+    SpecimenEntry{"column", "column of plane beams, exact entries, Euler's critical loads; K, G, M",
+                  "none free"},
+    SpecimenEntry{"saddle", "two blocks of bricks tied by Lagrange multipliers; K, M",
+                  "none free repeated-tie"},
     SpecimenEntry{"laplace", "7-point Laplacian of a box, every eigenvalue known in closed form; K",
                   "none free"},
 };
-constexpr std::array<Maker, kList.size()> kMakers{specimen::make_solid, specimen::make_plate,
-                                                  specimen::make_frame, specimen::make_laplace};
+constexpr std::array<Maker, kList.size()> kMakers{
+    specimen::make_solid,  specimen::make_plate,  specimen::make_frame,  specimen::make_lattice,
+    specimen::make_column, specimen::make_saddle, specimen::make_laplace};
 
 }  // namespace
 
