@@ -14,11 +14,16 @@
 namespace stanchion::cli {
 namespace {
 
-/// The file itself behind links, so that a link to a result file stays a link.
+/// The file itself behind links (there or not yet), so that a link to a result file stays a link.
 std::string behind_links(const std::string& path) {
+  constexpr int kMostLinks = 40;
+  std::filesystem::path target = path;
   std::error_code failure;
-  const auto resolved = std::filesystem::weakly_canonical(path, failure);
-  return failure ? path : resolved.string();
+  for (int links = 0; links < kMostLinks && std::filesystem::is_symlink(target, failure); ++links) {
+    const auto next = std::filesystem::read_symlink(target, failure);
+    target = next.is_absolute() ? next : target.parent_path() / next;
+  }
+  return target.string();
 }
 
 bool exists_but_not_regular(const std::string& path) {
