@@ -3,8 +3,10 @@
 
 #include "io/dof_map.hpp"
 #include "io/equation_list.hpp"
+#include "io/node_table.hpp"
 #include "io/output_file.hpp"
 #include "io/shortest.hpp"
+#include "io/value_list.hpp"
 
 namespace stanchion {
 namespace {
@@ -40,6 +42,36 @@ Status write_equation_list(const std::vector<Index>& equations, const std::strin
   OutputFile file(path, has_extension(path, ".gz"));
   file.write("equation\n");
   for (const Index equation : equations) file.write(std::to_string(equation + 1) + "\n");
+  return file.commit();
+}
+
+Status write_nodes(const NodeTable& nodes, const std::string& path) {
+  OutputFile file(path, has_extension(path, ".gz"));
+  file.write("node,x,y,z\n");
+  for (Offset i = 0; i < nodes.size() && file.ok(); ++i) {
+    std::string line;
+    append_integer(line, nodes.node(i));
+    for (const double coordinate : nodes.data(i)) {
+      line += ',';
+      append_number(line, coordinate);
+    }
+    line += '\n';
+    file.write(line);
+  }
+  return file.commit();
+}
+
+Status write_values(const std::vector<ListedValue>& values, const std::string& path) {
+  OutputFile file(path, has_extension(path, ".gz"));
+  file.write("value,tolerance,label\n");
+  for (const ListedValue& listed : values) {
+    std::string line;
+    append_number(line, listed.value);
+    line += ',';
+    if (listed.tolerance) append_number(line, *listed.tolerance);
+    line += ',' + field(listed.label) + '\n';
+    file.write(line);
+  }
   return file.commit();
 }
 
