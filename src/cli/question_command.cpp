@@ -3,9 +3,9 @@
 #include <filesystem>
 #include <system_error>
 
+#include "cli/answer_file.hpp"
 #include "cli/interrupt.hpp"
 #include "cli/log_file.hpp"
-#include "cli/output_file.hpp"
 #include "cli/progress_line.hpp"
 #include "cli/terminal.hpp"
 #include "model/exit_code.hpp"
@@ -56,18 +56,18 @@ Status check_overwrites_nothing(const std::string& target, const InputRequest& i
 }
 
 /// The JSON file, opened ahead of the work; nothing when no file was asked.
-Result<std::optional<OutputFile>> open_json_file(const OutputOptions& output, const InputRequest& input) {
-  std::optional<OutputFile> file;
+Result<std::optional<AnswerFile>> open_json_file(const OutputOptions& output, const InputRequest& input) {
+  std::optional<AnswerFile> file;
   if (!output.json || *output.json == "-") return file;
   if (Status status = check_overwrites_nothing(*output.json, input); !status.ok()) return status;
 
-  auto opened = OutputFile::open("--json", *output.json);
+  auto opened = AnswerFile::open(*output.json);
   if (!opened.ok()) return opened.status();
   file = std::move(*opened);
   return file;
 }
 
-Status deliver(const Outcome& outcome, const OutputOptions& output, std::optional<OutputFile>& json_file) {
+Status deliver(const Outcome& outcome, const OutputOptions& output, std::optional<AnswerFile>& json_file) {
   if (json_file) {
     if (Status status = json_file->commit(to_json(outcome)); !status.ok()) return status;
   }
