@@ -54,15 +54,6 @@ void write_time(Page& page, const Outcome& outcome) {
   page.row("machine", fmt::format("{}; {} {}", machine, program_name(), program_version()));
 }
 
-void write_warnings(Page& page, const Outcome& outcome) {
-  if (outcome.warnings.empty()) return;
-  page.title(outcome.warnings.size() == 1 ? "Warning" : "Warnings");
-  for (const Warning& warning : outcome.warnings) {
-    const std::string place = warning.place.empty() ? "" : warning.place + ": ";
-    page.bullet(fmt::format("{}{} [{}]", place, warning.message, warning.code));
-  }
-}
-
 void write_not_checked(Page& page, const Outcome& outcome) {
   if (outcome.not_checked.empty()) return;
   page.title("Not checked");
@@ -70,6 +61,15 @@ void write_not_checked(Page& page, const Outcome& outcome) {
 }
 
 }  // namespace
+
+void write_warnings(Page& page, const Warnings& warnings) {
+  if (warnings.empty()) return;
+  page.title(warnings.size() == 1 ? "Warning" : "Warnings");
+  for (const Warning& warning : warnings) {
+    const std::string place = warning.place.empty() ? "" : warning.place + ": ";
+    page.bullet(fmt::format("{}{} [{}]", place, warning.message, warning.code));
+  }
+}
 
 void write_inputs(Page& page, const Outcome& outcome) {
   for (const InputRecord& input : outcome.inputs) {
@@ -109,7 +109,7 @@ std::string to_text(const Outcome& outcome) {
   write_inputs(page, outcome);
   if (!outcome.forecast) write_work(page, outcome);
   write_time(page, outcome);
-  write_warnings(page, outcome);
+  write_warnings(page, outcome.warnings);
   write_not_checked(page, outcome);
   return page.text();
 }

@@ -20,6 +20,9 @@ void write_forecast(Page& page, const Outcome& outcome);
 /// The matrices that went in, one row each.
 void write_inputs(Page& page, const Outcome& outcome);
 
+/// One bullet a warning, with its place; nothing when there are none.
+void write_warnings(Page& page, const Warnings& warnings);
+
 /// "proof", "statistics (wrong with probability at most 1e-06)" or "nothing: no certificate".
 std::string backing_in_words(Level level, const std::optional<double>& failure_probability);
 
