@@ -1,0 +1,161 @@
+#include "engine/model_input.hpp"
+
+#include <algorithm>
+
+#include "base/clock.hpp"
+#include "io/equation_list.hpp"
+#include "io/preflight.hpp"
+#include "io/read_matrix.hpp"
+#include "io/strike.hpp"
+
+namespace stanchion {
+namespace {
+
+void append(Warnings& all, Warnings more) {
+  for (Warning& warning : more) all.push_back(std::move(warning));
+}
+
+class ModelReader {
+ public:
+  ModelReader(const Request& request, const RunContext& context, ThreadPool& pool, Outcome& outcome)
+      : input_(request.input), request_(request), context_(context), pool_(pool), outcome_(outcome) {}
+
+  Result<ModelInput> run() {
+    const Stopwatch watch;
+    if (context_.progress) context_.progress("read", 0);
+    if (Status status = read_dofs(); !status.ok()) return status;
+    if (Status status = read_matrices(); !status.ok()) return status;
+    if (Status status = strike_equations(); !status.ok()) return status;
+    if (Status status = inspect(); !status.ok()) return status;
+    outcome_.rows_analysed = model_.stiffness.rows;
+    outcome_.timings.read = watch.seconds();
+    return std::move(model_);
+  }
+
+ private:
+  Status read_dofs() {
+    if (!input_.dofs) return {};
+    auto map = read_dof_map(*input_.dofs, outcome_.warnings);
+    if (!map.ok()) return map.status();
+    model_.dofs = std::move(*map);
+    return {};
+  }
+
+  Result<SymmetricMatrix> read(const std::string& path, MatrixRole role, const char* name, std::optional<double> factor) {
+    if (context_.cancel != nullptr && context_.cancel->cancelled()) return Status::interrupted();
+    MatrixReadOptions options;
+    options.role = role;
+    options.symmetric_part = input_.symmetric_part;
+    options.base = input_.base;
+    options.rows = input_.rows;
+    options.dofs = model_.dofs ? &*model_.dofs : nullptr;
+    options.memory_limit_bytes = request_.memory_cap_bytes;
+    auto file = read_matrix(path, options, pool_);
+    if (!file.ok()) return file.status();
+    append(outcome_.warnings, std::move(file->warnings));
+    if (!model_.dofs && file->dofs) model_.dofs = std::move(file->dofs);
+    outcome_.inputs.push_back({name, path, file->sha256, file->matrix.rows, file->matrix.entries(), factor});
+    if (context_.log) context_.log(std::string("read ") + name + " " + path + ": " + file->format);
+    return std::move(file->matrix);
+  }
+
+  Status read_matrices() {
+    auto stiffness = read(input_.stiffness, MatrixRole::kStiffness, "stiffness", std::nullopt);
+    if (!stiffness.ok()) return stiffness.status();
+    model_.stiffness = std::move(*stiffness);
+    if (model_.dofs && input_.dofs) {
+      if (Status same = check_dof_map_size(*model_.dofs, *input_.dofs, model_.stiffness, input_.stiffness); !same.ok()) {
+        return same;
+      }
+    }
+    for (const AddedMatrix& added : input_.added) {
+      auto matrix = read(added.path, MatrixRole::kSecond, "added", added.factor);
+      if (!matrix.ok()) return matrix.status();
+      if (Status same = check_same_size(model_.stiffness, input_.stiffness, *matrix, added.path); !same.ok()) return same;
+      model_.added.push_back(std::move(*matrix));
+    }
+    const auto& second = input_.geometric ? input_.geometric : input_.mass;
+    if (!second) return {};
+    auto matrix = input_.geometric ? read(*second, MatrixRole::kSecond, "geometric", std::nullopt)
+                                   : read(*second, MatrixRole::kMass, "mass", std::nullopt);
+    if (!matrix.ok()) return matrix.status();
+    if (Status same = check_same_size(model_.stiffness, input_.stiffness, *matrix, *second); !same.ok()) return same;
+    model_.second = std::move(*matrix);
+    return {};
+  }
+
+  Result<std::vector<Index>> equations_to_strike() {
+    std::vector<Index> remove;
+    if (input_.fix) {
+      auto fixed = read_equation_list(*input_.fix, model_.stiffness.rows, dof_map(), outcome_.warnings);
+      if (!fixed.ok()) return fixed.status();
+      remove = std::move(*fixed);
+    }
+    if (input_.strike_held) {
+      const std::vector<Index> stamped = identity_rows(model_.stiffness);
+      remove.insert(remove.end(), stamped.begin(), stamped.end());
+      if (model_.dofs) {
+        const std::vector<Index> held = model_.dofs->held();
+        remove.insert(remove.end(), held.begin(), held.end());
+      }
+    }
+    return remove;
+  }
+
+  const DofMap* dof_map() const { return model_.dofs ? &*model_.dofs : nullptr; }
+
+  Status strike_equations() {
+    if (input_.multipliers) {
+      auto list = read_equation_list(*input_.multipliers, model_.stiffness.rows, dof_map(), outcome_.warnings);
+      if (!list.ok()) return list.status();
+      model_.multipliers = std::move(*list);
+    } else if (model_.dofs) {
+      model_.multipliers = model_.dofs->multipliers();
+    }
+    auto remove = equations_to_strike();
+    if (!remove.ok()) return remove.status();
+    if (remove->empty()) return {};
+    auto map = strike_map(model_.stiffness.rows, *remove);
+    if (!map.ok()) return map.status();
+    outcome_.rows_struck = map->struck();
+    std::vector<SymmetricMatrix*> members{&model_.stiffness};
+    for (SymmetricMatrix& added : model_.added) members.push_back(&added);
+    if (model_.second) members.push_back(&*model_.second);
+    for (SymmetricMatrix* member : members) {
+      auto reduced = strike(*member, *map, pool_);
+      if (!reduced.ok()) return reduced.status();
+      *member = std::move(*reduced);
+    }
+    model_.multipliers = renumber(model_.multipliers, *map);
+    if (model_.dofs) model_.dofs = model_.dofs->subset(map->original);
+    model_.original = std::move(map->original);
+    return {};
+  }
+
+  Status inspect() {
+    auto stiffness = preflight({model_.stiffness, input_.stiffness, MatrixRole::kStiffness, dof_map(), &model_.multipliers});
+    if (!stiffness.ok()) return stiffness.status();
+    append(outcome_.warnings, std::move(stiffness->warnings));
+    if (!model_.second) return {};
+    const MatrixRole role = input_.mass ? MatrixRole::kMass : MatrixRole::kSecond;
+    auto second = preflight({*model_.second, input_.mass ? *input_.mass : *input_.geometric, role, dof_map(), nullptr});
+    if (!second.ok()) return second.status();
+    append(outcome_.warnings, std::move(second->warnings));
+    return {};
+  }
+
+  const InputRequest& input_;
+  const Request& request_;
+  const RunContext& context_;
+  ThreadPool& pool_;
+  Outcome& outcome_;
+  ModelInput model_;
+};
+
+}  // namespace
+
+Result<ModelInput> read_model(const Request& request, const RunContext& context, ThreadPool& pool, Outcome& outcome) {
+  return ModelReader(request, context, pool, outcome).run();
+}
+
+}  // namespace stanchion

@@ -1,0 +1,184 @@
+#include "engine/prepared_pencil.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <unordered_map>
+
+#include "base/clock.hpp"
+#include "engine/host.hpp"
+#include "model/not_checked.hpp"
+#include "sparse/product.hpp"
+#include "sparse/scaling.hpp"
+
+namespace stanchion {
+namespace {
+
+SymmetricMatrix identity(Index rows) {
+  SymmetricMatrix matrix{rows, Buffer<Offset>(Offset{rows} + 1), Buffer<Index>(rows), Buffer<double>(rows, 1.0)};
+  for (Index i = 0; i < rows; ++i) {
+    matrix.column_start[i] = i;
+    matrix.row[i] = i;
+  }
+  matrix.column_start[rows] = rows;
+  return matrix;
+}
+
+/// Node numbers of the equations, renumbered from 0; negative for none.
+std::vector<Index> nodes_of(const std::optional<DofMap>& dofs, Index rows) {
+  std::vector<Index> nodes;
+  if (!dofs || dofs->equations() != rows) return nodes;
+  nodes.reserve(static_cast<std::size_t>(rows));
+  std::unordered_map<NodeNumber, Index> number;
+  for (Index i = 0; i < rows; ++i) {
+    const NodeNumber node = dofs->node(i);
+    if (node == kNoNode) {
+      nodes.push_back(-1);
+    } else {
+      nodes.push_back(number.try_emplace(node, static_cast<Index>(number.size())).first->second);
+    }
+  }
+  return nodes;
+}
+
+std::string mebibytes(Offset bytes) { return std::to_string((bytes + (1 << 20) - 1) >> 20) + " MiB"; }
+
+Status check_cap(const Request& request, Offset needed) {
+  if (!request.memory_cap_bytes || needed <= *request.memory_cap_bytes) return {};
+  return Status::resource_limit("memory-cap",
+                                "the run is forecast to need " + mebibytes(needed) + ", more than the cap of " +
+                                    mebibytes(*request.memory_cap_bytes),
+                                request.input.stiffness,
+                                "raise --memory-cap, use fewer --threads, or give --dofs for a better ordering");
+}
+
+}  // namespace
+
+int threads_of(const Request& request) { return request.threads > 0 ? request.threads : available_processors(); }
+
+Outcome begin_outcome(const char* command, const Request& request, Question question) {
+  Outcome outcome;
+  outcome.command = command;
+  outcome.host = describe_host();
+  outcome.not_checked = not_checked(request, question);
+  return outcome;
+}
+
+void finish_outcome(Outcome& outcome, double total_seconds) {
+  outcome.memory.peak = peak_resident_bytes();
+  outcome.timings.total = total_seconds;
+}
+
+Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identity, const Request& request,
+                                            const RunContext& context, ThreadPool& pool, Outcome& outcome) {
+  PreparedPencil pencil;
+  if (context.progress) context.progress("order", 0);
+  std::optional<SymmetricMatrix> unit;
+  if (with_identity) unit = identity(model.stiffness.rows);
+  std::vector<const SymmetricMatrix*> members{&model.stiffness};
+  for (const SymmetricMatrix& added : model.added) members.push_back(&added);
+  if (model.second) members.push_back(&*model.second);
+  if (unit) members.push_back(&*unit);
+  pencil.has_second_ = model.second || unit;
+  for (const AddedMatrix& added : request.input.added) pencil.added_factors_.push_back(added.factor);
+
+  MatrixFamily family = unite(members);
+  model.stiffness = SymmetricMatrix{};  // the union holds everything now
+  model.second.reset();
+  model.added.clear();
+  unit.reset();
+  // The ordering reads the pattern and which diagonals are zero; the first member's values serve for that.
+  SymmetricMatrix pattern{family.rows, std::move(family.column_start), std::move(family.row),
+                          std::move(family.values[0])};
+  const std::vector<Index> nodes = nodes_of(model.dofs, family.rows);
+  auto analysis = analyse({&pattern, nodes, true}, pool.size());
+  if (!analysis.ok()) return analysis.status();
+  if (context.cancel != nullptr && context.cancel->cancelled()) return Status::interrupted();
+  pencil.analysis_ = std::move(*analysis);
+  const Stopwatch watch;
+  family.column_start = std::move(pattern.column_start);
+  family.row = std::move(pattern.row);
+  family.values[0] = std::move(pattern.value);
+  pencil.family_ = permute(family, pencil.analysis_.tree.position_of);
+  family = MatrixFamily{};
+  auto scale = power_of_two_scaling(pencil.family_, pencil.combination(0).coefficients);
+  if (!scale.ok()) return scale.status();
+  pencil.scale_ = std::move(*scale);
+  pencil.resolution_ = request.resolution;
+  pencil.factor_options_.progress = context.progress;
+  pencil.factor_options_.cancel = context.cancel;
+
+  const StructureForecast& forecast = pencil.analysis_.forecast;
+  outcome.timings.order += pencil.analysis_.order_seconds;
+  outcome.timings.analyse += pencil.analysis_.analyse_seconds + watch.seconds();
+  outcome.work.factor_flops = forecast.factor_flops;
+  outcome.work.factor_entries = forecast.factor_entries;
+  outcome.work.supernodes = pencil.analysis_.tree.fronts;
+  outcome.work.largest_front = forecast.largest_front;
+  const Offset resident = resident_bytes();
+  outcome.memory.forecast = std::max(peak_resident_bytes(), resident + forecast.peak_bytes_count);
+  if (Status fits = check_cap(request, outcome.memory.forecast); !fits.ok()) return fits;
+  if (request.memory_cap_bytes) pencil.factor_options_.memory_cap_bytes = *request.memory_cap_bytes - resident;
+  return pencil;
+}
+
+ShiftedMatrix PreparedPencil::combination(double factor) const {
+  ShiftedMatrix matrix{&family_, {1.0}, &scale_, 0};
+  matrix.coefficients.insert(matrix.coefficients.end(), added_factors_.begin(), added_factors_.end());
+  if (has_second_) matrix.coefficients.push_back(factor);
+  return matrix;
+}
+
+Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
+                                             Outcome& outcome) {
+  auto certified = certify_by_offsets(analysis_, matrix, options, pool);
+  if (!certified.ok()) return certified.status();
+  outcome.timings.factor += certified->seconds;
+  outcome.work.factorizations += certified->factorizations;
+  outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified->delayed_pivots);
+  outcome.work.two_by_two_pivots = std::max(outcome.work.two_by_two_pivots, certified->two_by_two_pivots);
+  return certified;
+}
+
+Result<CertifiedInertia> PreparedPencil::certify(double factor, bool definite_first, double data_error,
+                                                 ThreadPool& pool, Outcome& outcome) {
+  OffsetOptions options;
+  options.definite_first = definite_first;
+  options.resolution = resolution_;
+  options.data_error = data_error;
+  options.factor = factor_options_;
+  return run(combination(factor), options, pool, outcome);
+}
+
+Result<CertifiedInertia> PreparedPencil::certify_second(ThreadPool& pool, Outcome& outcome) {
+  ShiftedMatrix matrix = combination(1);
+  std::fill(matrix.coefficients.begin(), matrix.coefficients.end() - 1, 0.0);
+  auto scale = power_of_two_scaling(family_, matrix.coefficients);
+  if (!scale.ok()) return scale.status();
+  matrix.scale = &*scale;
+  OffsetOptions options;
+  options.definite_first = true;
+  options.factor = factor_options_;
+  return run(matrix, options, pool, outcome);
+}
+
+double PreparedPencil::digits_error(double factor, int digits) const {
+  // Each member was rounded on its own: the row sums of sum_t |coefficient_t| |A_t|, scaled.
+  const ShiftedMatrix matrix = combination(factor);
+  std::vector<double> sums(static_cast<std::size_t>(family_.rows), 0);
+  for (Index j = 0; j < family_.rows; ++j) {
+    for (Offset k = family_.column_start[j]; k < family_.column_start[Offset{j} + 1]; ++k) {
+      const Index i = family_.row[k];
+      double size = 0;
+      for (std::size_t t = 0; t < matrix.coefficients.size(); ++t) {
+        size += std::fabs(matrix.coefficients[t] * family_.values[t][k]);
+      }
+      size *= scale_[i] * scale_[j];
+      sums[static_cast<std::size_t>(i)] += size;
+      if (i != j) sums[static_cast<std::size_t>(j)] += size;
+    }
+  }
+  const double largest = sums.empty() ? 0 : *std::max_element(sums.begin(), sums.end());
+  return 0.5 * std::pow(10.0, 1 - digits) * largest * 1.001;
+}
+
+}  // namespace stanchion

@@ -1,0 +1,62 @@
+// A model ready to be factored at any shift: one analysis, the matrices in elimination order, one scaling.
+#pragma once
+
+#include <memory>
+#include <span>
+#include <vector>
+
+#include "base/threads.hpp"
+#include "engine/model_input.hpp"
+#include "inertia/two_offsets.hpp"
+#include "model/question.hpp"
+#include "sparse/matrix_family.hpp"
+#include "symbolic/analysis.hpp"
+
+namespace stanchion {
+
+/// Members of the family: the stiffness, the added matrices, and last the second matrix (or the identity).
+class PreparedPencil {
+ public:
+  /// Takes the matrices out of `model`. `with_identity`: the second member is I (shifts of K alone).
+  /// Fills timings, work and the memory forecast of `outcome`, and refuses what the cap cannot hold.
+  static Result<PreparedPencil> make(ModelInput& model, bool with_identity, const Request& request,
+                                     const RunContext& context, ThreadPool& pool, Outcome& outcome);
+
+  /// Certified inertia of K (with what is added) + factor * second. `definite_first`: see OffsetOptions.
+  /// Books time and work into `outcome`.
+  Result<CertifiedInertia> certify(double factor, bool definite_first, double data_error, ThreadPool& pool,
+                                   Outcome& outcome);
+
+  /// The second matrix alone.
+  Result<CertifiedInertia> certify_second(ThreadPool& pool, Outcome& outcome);
+
+  /// Half a unit of decimal digit `digits` of every entry at `factor`, as a bound on the 2-norm.
+  double digits_error(double factor, int digits) const;
+
+  const Analysis& analysis() const { return analysis_; }
+  bool has_second() const { return has_second_; }
+
+ private:
+  ShiftedMatrix combination(double factor) const;
+  Result<CertifiedInertia> run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
+                               Outcome& outcome);
+
+  Analysis analysis_;
+  MatrixFamily family_;
+  Buffer<double> scale_;
+  std::vector<double> added_factors_;
+  bool has_second_ = false;
+  std::optional<double> resolution_;
+  FactorOptions factor_options_;
+};
+
+/// Threads asked for, or all available.
+int threads_of(const Request& request);
+
+/// Fields every outcome has; call first.
+Outcome begin_outcome(const char* command, const Request& request, Question question);
+
+/// Peak memory and total time; call last.
+void finish_outcome(Outcome& outcome, double total_seconds);
+
+}  // namespace stanchion

@@ -1,0 +1,173 @@
+#include "inertia/two_offsets.hpp"
+
+#include <algorithm>
+#include <cmath>
+
+#include "sparse/product.hpp"
+
+namespace stanchion {
+namespace {
+
+/// First guesses of c over ||A_s||_inf: a few times the bounds usually seen, so that one factorization is enough.
+constexpr double kDefiniteGuess = 0x1p-40, kGeneralGuess = 0x1p-36;
+/// A retry takes this many times the bound just reported: a changed offset moves the bound a little.
+constexpr double kMargin = 2.0;
+/// A resolution this many times its bounds is worth sharpening when zeros were left.
+constexpr double kSharpenAbove = 8.0;
+constexpr int kMostRounds = 3;
+
+class OffsetScheme {
+ public:
+  OffsetScheme(const Analysis& analysis, const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool)
+      : analysis_(analysis), matrix_(matrix), options_(options), pool_(pool), rows_(analysis.tree.rows) {}
+
+  Result<CertifiedInertia> run() {
+    const double norm = infinity_norm(matrix_);
+    Certificate& certificate = found_.certificate;
+    certificate.method = "offsets";
+    certificate.precision = "double";
+    if (rows_ == 0) {
+      certificate.level = Level::kProved;
+      return found_;
+    }
+    double offset = options_.resolution.value_or(std::max(norm, 0x1p-500) *
+                                                 (options_.definite_first ? kDefiniteGuess : kGeneralGuess));
+    if (!options_.resolution) offset = std::max(offset, kMargin * options_.data_error);
+    if (options_.definite_first) {
+      auto settled = try_definite(offset);
+      if (!settled.ok()) return settled.status();
+      if (*settled) return found_;
+    }
+    return both_offsets(offset);
+  }
+
+ private:
+  struct Run {
+    bool stopped = false, breakdown = false;
+    double offset = 0, bound = 0;
+    Index negative = 0;
+  };
+
+  /// One factorization of A_s - offset I; its bound includes the data's own error.
+  Result<Run> factor(double offset, bool definite) {
+    ShiftedMatrix shifted = matrix_;
+    shifted.offset = offset;
+    FactorOptions factor_options = options_.factor;
+    factor_options.definite = definite;
+    auto result = factorize(analysis_, shifted, factor_options, pool_);
+    if (!result.ok()) return result.status();
+    ++found_.factorizations;
+    found_.delayed_pivots = std::max(found_.delayed_pivots, result->delayed_pivots);
+    found_.two_by_two_pivots = std::max(found_.two_by_two_pivots, result->two_by_two_pivots);
+    found_.peak_bytes = std::max(found_.peak_bytes, result->peak_bytes);
+    found_.seconds += result->seconds;
+    Run run{result->stopped, result->breakdown || !std::isfinite(result->error_bound), offset,
+            result->error_bound + options_.data_error, static_cast<Index>(result->signs.negative)};
+    if (!run.stopped && !run.breakdown) {
+      found_.certificate.runs.push_back({offset, run.negative, run.bound});
+      found_.certificate.error_bound = std::max(found_.certificate.error_bound.value_or(0), run.bound);
+    }
+    return run;
+  }
+
+  /// True when positive definiteness was proved without pivoting.
+  Result<bool> try_definite(double& offset) {
+    for (int attempt = 0; attempt < 2; ++attempt) {
+      auto run = factor(offset, true);
+      if (!run.ok()) return run.status();
+      if (run->stopped || run->breakdown) return false;
+      if (offset > run->bound) {
+        settle(rows_, 0, offset, run->bound);
+        return true;
+      }
+      if (options_.resolution) return false;
+      offset = kMargin * run->bound;
+    }
+    return false;
+  }
+
+  /// Records n - k positives and m negatives at resolution `offset`.
+  void settle(Index positive, Index negative, double offset, double bound_below) {
+    found_.inertia = {negative, rows_ - positive - negative, positive, 0};
+    found_.certificate.level = Level::kProved;
+    found_.certificate.resolution = offset;
+    if (positive == rows_) {
+      const double above = offset - bound_below;
+      double largest_scale = 0;
+      for (const double s : *matrix_.scale) largest_scale = std::max(largest_scale, s);
+      // Rounded down: the subtraction and the square may each round up.
+      found_.certificate.smallest_eigenvalue_above = above * (1 - 0x1p-50);
+      found_.certificate.smallest_eigenvalue_of_k_above = above / (largest_scale * largest_scale) * (1 - 0x1p-50);
+    }
+  }
+
+  void give_up(std::string because) {
+    found_.inertia = {0, 0, 0, rows_};
+    found_.certificate.level = Level::kNone;
+    found_.unresolved_because = std::move(because);
+  }
+
+  Result<CertifiedInertia> both_offsets(double offset) {
+    bool have_answer = false;
+    for (int round = 0; round < kMostRounds; ++round) {
+      auto below = factor(offset, false);
+      if (!below.ok()) return below.status();
+      if (!options_.resolution && !have_answer && !below->breakdown && below->bound >= offset) {
+        offset = kMargin * below->bound;
+        continue;
+      }
+      auto above = factor(-offset, false);
+      if (!above.ok()) return above.status();
+      const double bound = std::max(below->bound, above->bound);
+      if (below->breakdown || above->breakdown) {
+        if (!have_answer) give_up("the factorization broke down: entries overflow or no usable pivot is left");
+        return found_;
+      }
+      if (offset <= bound) {
+        if (have_answer) return found_;
+        if (options_.resolution) {
+          give_up("the resolution asked for is below the error bound " + std::to_string(bound) +
+                  "; ask for at least twice that");
+          return found_;
+        }
+        offset = kMargin * bound;
+        continue;
+      }
+      if (below->negative < above->negative) {
+        return Status::internal("the counts at the two offsets contradict their error bounds (" +
+                                std::to_string(below->negative) + " < " + std::to_string(above->negative) +
+                                "): a fault of the machine, its BLAS, or the program");
+      }
+      settle(rows_ - below->negative, above->negative, offset, below->bound);
+      have_answer = true;
+      const bool worth_sharpening = found_.inertia.zero > 0 && !options_.resolution && offset > kSharpenAbove * bound;
+      if (!worth_sharpening) return found_;
+      offset = kMargin * bound;
+    }
+    if (!have_answer) give_up("no offset above the error bound was found; the bound grew with every retry");
+    return found_;
+  }
+
+  const Analysis& analysis_;
+  const ShiftedMatrix& matrix_;
+  const OffsetOptions& options_;
+  ThreadPool& pool_;
+  Index rows_;
+  CertifiedInertia found_;
+};
+
+}  // namespace
+
+Result<CertifiedInertia> certify_by_offsets(const Analysis& analysis, const ShiftedMatrix& matrix,
+                                            const OffsetOptions& options, ThreadPool& pool) {
+  return OffsetScheme(analysis, matrix, options, pool).run();
+}
+
+Verdict verdict_of(const Inertia& inertia, Level level) {
+  if (level == Level::kNone || inertia.undecided > 0) return Verdict::kUnresolved;
+  if (inertia.negative > 0 && inertia.positive > 0) return Verdict::kIndefinite;
+  if (inertia.zero == 0) return inertia.negative > 0 ? Verdict::kNegativeDefinite : Verdict::kPositiveDefinite;
+  return inertia.negative > 0 ? Verdict::kNegativeSemidefinite : Verdict::kPositiveSemidefinite;
+}
+
+}  // namespace stanchion

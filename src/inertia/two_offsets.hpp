@@ -1,0 +1,43 @@
+// The certified inertia of one matrix, from factorizations of A_s - cI and A_s + cI.
+#pragma once
+
+#include <optional>
+#include <string>
+
+#include "numeric/factorization.hpp"
+#include "stanchion/outcome.hpp"
+
+namespace stanchion {
+
+struct OffsetOptions {
+  bool definite_first = false;       ///< expect a positive definite matrix: try without pivoting, stop early
+  std::optional<double> resolution;  ///< the offset c itself; absent: chosen, retried larger or smaller
+  double data_error = 0;             ///< bound on the 2-norm of what the scaled entries themselves may be off
+  FactorOptions factor;              ///< threshold, cap, progress, cancellation; `definite` is set here
+};
+
+/// An inertia with its backing and what it cost.
+struct CertifiedInertia {
+  Inertia inertia;
+  Certificate certificate;
+  std::string unresolved_because;  ///< empty when certificate.level is proved
+  Index factorizations = 0;
+  Offset delayed_pivots = 0, two_by_two_pivots = 0, peak_bytes = 0;
+  double seconds = 0;
+};
+
+/// Counts at both offsets and what follows: with bounds eta-, eta+ on the two backward errors and c above both,
+/// at least m = n-(A_s + cI) eigenvalues are negative, at least n - k with k = n-(A_s - cI) are positive, the
+/// k - m between are zero at the resolution c (of either sign). k = 0 proves positive definiteness from one
+/// factorization, with lambda_min(A_s) >= c - eta-. Derivation: error_bound.md. The offset of `matrix` is ignored.
+/// Without `resolution` c follows the bounds, so that an answer exists unless the factorization breaks down; the
+/// zeros then say what double precision could not tell apart. Level: proved, or none with the reason.
+/// Errors: those of factorize(); internal when the counts contradict the bounds (a fault of machine or program).
+/// Cost: one factorization in the good definite case, otherwise two to six.
+Result<CertifiedInertia> certify_by_offsets(const Analysis& analysis, const ShiftedMatrix& matrix,
+                                            const OffsetOptions& options, ThreadPool& pool);
+
+/// What the signs say.
+Verdict verdict_of(const Inertia& inertia, Level level);
+
+}  // namespace stanchion
