@@ -51,7 +51,7 @@ bool CsvReader::split(std::string_view line) {
     return separator_ == 0 ? c == ' ' || c == '\t' : c == separator_;
   };
   for (;;) {
-    while (at < line.size() && (line[at] == ' ' || line[at] == '\t')) ++at;
+    while (at < line.size() && (line[at] == ' ' || line[at] == '\t') && line[at] != separator_) ++at;
     if (at < line.size() && line[at] == '"') {
       std::string field;
       for (++at; at < line.size(); ++at) {
@@ -93,7 +93,10 @@ bool CsvReader::start(std::string_view line) {
       if (name == columns_[column].name) position_[column] = static_cast<int>(field);
     }
   }
-  has_header_ = std::any_of(position_.begin(), position_.end(), [](int at) { return at >= 0; });
+  // A record that starts like a number is data, even when a later field happens to be a column's name.
+  const char lead = split_.front().empty() ? '0' : split_.front().front();
+  const bool numeric = (lead >= '0' && lead <= '9') || lead == '-' || lead == '+' || lead == '.';
+  has_header_ = !numeric && std::any_of(position_.begin(), position_.end(), [](int at) { return at >= 0; });
   for (std::size_t column = 0; column < columns_.size(); ++column) {
     if (!has_header_) position_[column] = static_cast<int>(column);
     if (has_header_ && columns_[column].required && position_[column] < 0) {

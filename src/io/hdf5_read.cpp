@@ -66,7 +66,8 @@ class Hdf5Reader {
 
  private:
   Status refuse(const char* code, const std::string& message) const {
-    return Status::bad_input(code, message, path_, "write the file again, with " + std::string(kLayout + 5));
+    const bool damaged = std::string_view(code) == "damaged-hdf5";
+    return Status::bad_input(code, message, path_, damaged ? "write or transfer the file again" : kLayout);
   }
 
   Status choose_group(hid_t file, std::string& name) const {

@@ -132,9 +132,17 @@ class KeyedReader {
   }
 
  private:
+  /// Some word of a header line says what the columns are; other words are a fault, and named as such.
   static bool is_header(const KeyedLine& keyed) {
-    const std::string_view name = keyed.field[0];
-    return !name.empty() && (name.front() | 0x20) >= 'a' && (name.front() | 0x20) <= 'z';
+    Offset node = 0;
+    if (whole(keyed.field[0], node)) return false;
+    for (const std::string_view field : keyed.field) {
+      const std::string name = lower_case(field);
+      for (const char* word : {"node", "dof", "value"}) {
+        if (name.find(word) != std::string::npos) return true;
+      }
+    }
+    return false;
   }
 
   Status take(const KeyedLine& keyed, const std::string& place, EntryList& entries) {
