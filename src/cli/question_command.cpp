@@ -1,5 +1,7 @@
 #include "cli/question_command.hpp"
 
+#include <fmt/format.h>
+
 #include <filesystem>
 #include <system_error>
 
@@ -10,6 +12,8 @@
 #include "cli/terminal.hpp"
 #include "model/exit_code.hpp"
 #include "model/names.hpp"
+#include "model/version.hpp"
+
 #include "report/json.hpp"
 #include "report/text.hpp"
 
@@ -109,7 +113,9 @@ Result<int> QuestionCommand::run(const Call& call) {
   const auto log = LogFile::open(output_.log);
   if (!log.ok()) return log.status();
 
+  log->line(fmt::format("{} {}: {}", program_name(), program_version(), fmt::join(call.arguments, " ")));
   auto outcome = ask(*request, *log);
+
   if (!outcome.ok()) {
     log->line(outcome.status().to_string());
     return outcome.status();
@@ -119,7 +125,9 @@ Result<int> QuestionCommand::run(const Call& call) {
   outcome->title = output_.title;
   outcome->reference = output_.reference;
   if (Status status = deliver(*outcome, output_, *json_file); !status.ok()) return status;
-  return exit_code(*outcome, *judgement);
+  const ExitCode code = exit_code(*outcome, *judgement);
+  log->line(fmt::format("answered, exit code {}", static_cast<int>(code)));
+  return code;
 }
 
 }  // namespace stanchion::cli

@@ -49,7 +49,7 @@ std::string flops_in_words(double flops) {
 
 std::string duration_in_words(double seconds) {
   if (!(seconds >= 0) || !std::isfinite(seconds)) return "unknown";
-  if (seconds < 0.001) return "<0.001 s";
+  if (seconds < 0.001) return "<1 ms";
   if (seconds < 0.995) return fmt::format("{:.2g} s", seconds);
   if (seconds < 59.95) return fmt::format("{:.1f} s", seconds);
   const auto whole = static_cast<Offset>(std::llround(seconds));

@@ -22,7 +22,7 @@ std::string bytes_in_words(Offset bytes);
 /// 4.6e9 -> "4.6 Gflop".
 std::string flops_in_words(double flops);
 
-/// 0.0312 -> "0.031 s", 75 -> "1 min 15 s", 7260 -> "2 h 1 min".
+/// 0.0004 -> "<1 ms", 0.0312 -> "0.031 s", 75 -> "1 min 15 s", 7260 -> "2 h 1 min".
 std::string duration_in_words(double seconds);
 
 /// (1, "zero direction") -> "1 zero direction"; (6, ...) -> "6 zero directions"; 0 -> "no zero direction".

@@ -47,7 +47,7 @@ void Page::bullet(const std::string& text) {
   wrapped("  - ", text);
 }
 
-void Page::table(const std::vector<std::vector<std::string>>& rows) {
+void Page::table(const std::vector<std::vector<std::string>>& rows, std::size_t to_the_right) {
   std::vector<std::size_t> widths;
   for (const auto& row : rows) {
     widths.resize(std::max(widths.size(), row.size()), 0);
@@ -55,7 +55,10 @@ void Page::table(const std::vector<std::vector<std::string>>& rows) {
   }
   for (const auto& row : rows) {
     std::string lead = " ";
-    for (std::size_t k = 0; k + 1 < row.size(); ++k) lead += fmt::format(" {:>{}} ", row[k], widths[k]);
+    for (std::size_t k = 0; k + 1 < row.size(); ++k) {
+      lead += k < to_the_right ? fmt::format(" {:>{}} ", row[k], widths[k])
+                               : fmt::format(" {:<{}} ", row[k], widths[k]);
+    }
     wrapped(lead + " ", row.empty() ? "" : row.back());
   }
 }

@@ -20,8 +20,9 @@ class Page {
   void row(const std::string& label, const std::string& text);
   /// "  - text", hanging.
   void bullet(const std::string& text);
-  /// Rows of cells in columns as wide as needed: all to the right except the last column, which wraps.
-  void table(const std::vector<std::vector<std::string>>& rows);
+  /// Rows of cells in columns as wide as needed, the first `to_the_right` of them set to the right (numbers),
+  /// the others to the left; the last one wraps.
+  void table(const std::vector<std::vector<std::string>>& rows, std::size_t to_the_right);
   void blank();
 
   const std::string& text() const { return text_; }

@@ -35,6 +35,13 @@ void write_work(Page& page, const Outcome& outcome) {
                                  bytes_in_words(outcome.memory.forecast)));
 }
 
+/// Libraries state their whole build configuration; a person wants name and version.
+std::string first_words(const std::string& text, int words) {
+  std::size_t end = 0;
+  for (int k = 0; k < words && end != std::string::npos; ++k) end = text.find(' ', end == 0 ? 0 : end + 1);
+  return text.substr(0, end);
+}
+
 void write_time(Page& page, const Outcome& outcome) {
   const Timings& t = outcome.timings;
   std::string parts;
@@ -50,7 +57,7 @@ void write_time(Page& page, const Outcome& outcome) {
   page.row("time", duration_in_words(t.total) + (parts.empty() ? "" : ": " + parts));
   std::string machine = counted(outcome.host.cores, "core");
   if (!outcome.host.isa.empty()) machine += ", " + outcome.host.isa;
-  if (!outcome.host.blas.empty()) machine += ", " + outcome.host.blas;
+  if (!outcome.host.blas.empty()) machine += ", " + first_words(outcome.host.blas, 2);
   page.row("machine", fmt::format("{}; {} {}", machine, program_name(), program_version()));
 }
 

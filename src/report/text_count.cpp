@@ -16,8 +16,9 @@ std::string count_in_words(const ShiftCount& count) {
 
 std::string backing(const ShiftCount& count) {
   std::string text = backing_in_words(count.level, count.failure_probability);
-  if (count.method == "offsets") text += ", factors on both sides";
-  if (count.method == "relative") text += ", one factor compared with the matrix";
+  if (count.method == "offsets")
+    text += count.certificate.runs.size() == 1 ? ", from one factor" : ", from factors on both sides";
+  if (count.method == "relative") text += ", from one factor compared with the matrix";
   if (count.certificate.precision == "single") text += ", in single precision";
   return text;
 }
@@ -34,24 +35,40 @@ bool same_meaning(const std::vector<ShiftCount>& counts) {
                      [&](const ShiftCount& count) { return count.meaning == counts.front().meaning; });
 }
 
-/// One sentence when a single shift was asked: the answer before the table.
+bool any_margin(const std::vector<ShiftCount>& counts) {
+  return std::any_of(counts.begin(), counts.end(),
+                     [](const ShiftCount& count) { return count.holds_outside.has_value(); });
+}
+
+/// The answer itself when a single shift was asked; else whether all were answered.
 std::string headline(const std::vector<ShiftCount>& counts) {
   const bool all = std::all_of(counts.begin(), counts.end(), [](const ShiftCount& count) {
     return count.below.has_value() && count.level != Level::kNone;
   });
-  const std::string meaning = same_meaning(counts) ? counts.front().meaning : "counts";
   if (counts.size() == 1 && all) {
-    return fmt::format("At {}: {} {}.", exact(counts[0].shift), grouped(*counts[0].below), meaning);
+    return fmt::format("At {}: {} {}.", exact(counts[0].shift), grouped(*counts[0].below), counts[0].meaning);
   }
-  if (all) return fmt::format("All {} counts are certified: {}.", counts.size(), meaning);
-  return fmt::format("Not every count could be certified: {}.", meaning);
+  const std::string meaning = same_meaning(counts) ? ": " + counts.front().meaning : "";
+  return (all ? fmt::format("All {} counts are certified", counts.size())
+              : "Not every count could be certified") +
+         meaning + ".";
 }
 
-std::vector<std::vector<std::string>> rows_of(const std::vector<ShiftCount>& counts, bool one_meaning) {
-  std::vector<std::vector<std::string>> rows{{"shift", "count", "margin", "backed by"}};
+/// Shift, count, margin (if any has one), backing, and what is counted (if that differs).
+std::vector<std::vector<std::string>> rows_of(const std::vector<ShiftCount>& counts) {
+  const bool margins = any_margin(counts), meanings = !same_meaning(counts);
+  const auto row = [&](std::string shift, std::string count, std::string margin, std::string backing,
+                       std::string meaning) {
+    std::vector<std::string> cells{std::move(shift), std::move(count)};
+    if (margins) cells.push_back(std::move(margin));
+    cells.push_back(std::move(backing));
+    if (meanings) cells.push_back(std::move(meaning));
+    return cells;
+  };
+  std::vector<std::vector<std::string>> rows{row("shift", "count", "margin", "backed by", "counted")};
   for (const ShiftCount& count : counts) {
-    const std::string meaning = one_meaning ? "" : "; " + count.meaning;
-    rows.push_back({exact(count.shift), count_in_words(count), margin(count), backing(count) + meaning});
+    rows.push_back(
+        row(exact(count.shift), count_in_words(count), margin(count), backing(count), count.meaning));
   }
   return rows;
 }
@@ -64,15 +81,13 @@ void write_count(Page& page, const Outcome& outcome) {
     page.sentence("No shift was asked.");
     return;
   }
-  const bool one_meaning = same_meaning(answer.counts);
   page.sentence(headline(answer.counts));
   for (const std::string& sentence : answer.sentences) page.sentence(sentence);
   page.blank();
-  page.table(rows_of(answer.counts, one_meaning));
-  const bool margins = std::any_of(answer.counts.begin(), answer.counts.end(),
-                                   [](const ShiftCount& count) { return count.holds_outside.has_value(); });
-  if (margins)
+  page.table(rows_of(answer.counts), any_margin(answer.counts) ? 3 : 2);
+  if (any_margin(answer.counts)) {
     page.sentence("A count is exact unless one of what is counted lies within the margin of its shift.");
+  }
 }
 
 }  // namespace stanchion

@@ -7,8 +7,10 @@ namespace stanchion {
 
 void write_forecast(Page& page, const Outcome& outcome) {
   const ForecastOutcome& forecast = *outcome.forecast;
-  page.sentence(fmt::format("One count will take about {} and {} of memory.",
-                            duration_in_words(forecast.seconds), bytes_in_words(forecast.peak_bytes_count)));
+  page.sentence(fmt::format(
+      "One count will take {} and {} of memory.",
+      forecast.seconds < 0.001 ? "less than 1 ms" : "about " + duration_in_words(forecast.seconds),
+      bytes_in_words(forecast.peak_bytes_count)));
   page.blank();
   page.row("factor", fmt::format("{} entries, {}", grouped(forecast.factor_entries),
                                  flops_in_words(forecast.factor_flops)));

@@ -62,7 +62,8 @@ class OutputsTest(ProgramTest):
     def test_log(self):
         self.expect_zero("check", self.stiffness, "--log", "run.log", "--quiet")
         lines = (self.folder / "run.log").read_text().splitlines()
-        self.assertGreater(len(lines), 1)
+        self.assertIn(" stanchion ", lines[0])
+        self.assertIn("answered, exit code 0", lines[-1])
         for line in lines:
             self.assertRegex(line, r"^\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d\.\d{3} \S")
         run = self.run_program("check", self.stiffness, "--log", "-", "--json", "-")

@@ -33,7 +33,7 @@ TEST(Numbers, SizesAndFlopsCarryTheLargestPrefix) {
 }
 
 TEST(Numbers, DurationsChangeTheirUnit) {
-  EXPECT_EQ(duration_in_words(0), "<0.001 s");
+  EXPECT_EQ(duration_in_words(0), "<1 ms");
   EXPECT_EQ(duration_in_words(0.0312), "0.031 s");
   EXPECT_EQ(duration_in_words(0.999), "1.0 s");
   EXPECT_EQ(duration_in_words(12.34), "12.3 s");

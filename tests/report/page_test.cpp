@@ -27,8 +27,8 @@ TEST(Page, ALongWordIsLeftWhole) {
 
 TEST(Page, TableColumnsAreAsWideAsNeeded) {
   Page page;
-  page.table({{"shift", "count", "backed by"}, {"1.5", "123456", "proof"}});
-  EXPECT_EQ(page.text(), "  shift   count  backed by\n    1.5  123456  proof\n");
+  page.table({{"shift", "count", "backed by", "counted"}, {"1.5", "123456", "proof", "factors"}}, 2);
+  EXPECT_EQ(page.text(), "  shift   count  backed by  counted\n    1.5  123456  proof      factors\n");
 }
 
 TEST(Page, NoTrailingBlanks) {

@@ -75,9 +75,18 @@ TEST(Text, NamesWhatWasNotCheckedAndEveryWarningWithItsPlace) {
 TEST(Text, CountsAreATable) {
   const std::string text = to_text(samples::counted());
   EXPECT_NE(text.find("  shift  count  margin  backed by\n"), std::string::npos);
-  EXPECT_NE(text.find("  -2.25      3   1e-09  proof, factors on both sides\n"), std::string::npos);
+  EXPECT_NE(text.find("  -2.25      3   1e-09  proof, from factors on both sides\n"), std::string::npos);
   EXPECT_TRUE(says(samples::counted_in_part(), "2 to 4       -  nothing: no certificate"));
   EXPECT_TRUE(says(samples::counted(), "definite at every f in [0, 1.5]"));
+}
+
+TEST(Text, DifferentMeaningsGetAColumn) {
+  Outcome outcome = samples::counted();
+  outcome.count->counts[1].meaning = "critical factors between f and 0";
+  EXPECT_EQ(first_line(outcome), "All 3 counts are certified.");
+  EXPECT_TRUE(
+      says(outcome,
+           "  -2.25      3   1e-09  proof, from factors on both sides  critical factors between f and 0\n"));
 }
 
 TEST(Text, ASingleCountIsASentence) {
