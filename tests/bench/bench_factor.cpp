@@ -1,0 +1,90 @@
+// Our own engine on a specimen: form, order, analyse, factor once; one JSON line per repetition.
+#include <cstdio>
+#include <cstdlib>
+
+#include "base/clock.hpp"
+#include "bench/bench_record.hpp"
+#include "bench/process_usage.hpp"
+#include "numeric/factorization.hpp"
+#include "sparse/scaling.hpp"
+#include "symbolic/analysis.hpp"
+
+namespace {
+
+using namespace stanchion;
+using namespace stanchion::bench;
+
+template <class T>
+T take(Result<T> result) {
+  if (!result.ok()) {
+    std::fprintf(stderr, "%s\n", result.status().to_string().c_str());
+    std::exit(1);
+  }
+  return std::move(*result);
+}
+
+/// The union pattern as a matrix, which is what the ordering takes.
+SymmetricMatrix union_pattern(const MatrixFamily& family) {
+  return {family.rows, family.column_start.clone(), family.row.clone(), family.values[0].clone()};
+}
+
+BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& arguments, ThreadPool& pool) {
+  BenchRecord record;
+  record.program = "stanchion";
+  reset_highest_resident();
+  record.resident_before = resident_bytes();
+  Stopwatch watch;
+  std::vector<const SymmetricMatrix*> members;
+  for (const auto& member : bench_case.members) members.push_back(&member);
+  MatrixFamily family = unite(members);
+  record.rows = family.rows;
+  record.entries = family.entries();
+  record.form_seconds = watch.seconds();
+
+  Analysis analysis;
+  if (members.size() == 1) {
+    analysis = take(analyse({members[0], bench_case.node_of, true}, arguments.threads));
+  } else {
+    const SymmetricMatrix pattern = union_pattern(family);
+    analysis = take(analyse({&pattern, bench_case.node_of, true}, arguments.threads));
+  }
+  record.order_seconds = analysis.order_seconds;
+  record.analyse_seconds = analysis.analyse_seconds;
+
+  watch.restart();
+  family = permute(family, analysis.tree.position_of);
+  const Buffer<double> scale = take(power_of_two_scaling(family, bench_case.coefficients));
+  record.form_seconds += watch.seconds();
+
+  FactorOptions options;
+  options.definite = arguments.definite;
+  options.keep_factor = arguments.keep;
+  const double processor_before = processor_seconds();
+  watch.restart();
+  const Factorization f =
+      take(factorize(analysis, {&family, bench_case.coefficients, &scale, 0}, options, pool));
+  record.numeric_seconds = watch.seconds();
+  record.numeric_cpu_seconds = processor_seconds() - processor_before;
+  record.factor_flops = analysis.forecast.factor_flops;
+  record.factor_entries = analysis.forecast.factor_entries;
+  record.stored_entries = analysis.forecast.stored_factor_entries;
+  record.delayed_pivots = f.delayed_pivots;
+  record.negative = f.signs.negative;
+  record.valid = !f.breakdown && !f.stopped;
+  record.definite = record.valid && f.signs.positive == family.rows;
+  record.error_bound = f.error_bound;
+  record.highest_resident = highest_resident_bytes();
+  return record;
+}
+
+}  // namespace
+
+int main(int argc, char** argv) {
+  const BenchArguments arguments = read_arguments(argc, argv);
+  const BenchCase bench_case = make_case(arguments);
+  ThreadPool pool(arguments.threads);
+  for (int repetition = 0; repetition < arguments.repetitions; ++repetition) {
+    print_record(arguments, repetition, run_once(bench_case, arguments, pool));
+  }
+  return 0;
+}
