@@ -65,7 +65,12 @@ void ThreadPool::worker_loop(int worker) {
 void ThreadPool::run(Offset pieces, const std::function<void(Offset, int)>& work) {
   if (pieces <= 0) return;
   if (workers_.empty() || pieces == 1) {
-    for (Offset piece = 0; piece < pieces; ++piece) work(piece, 0);
+    work_ = &work;
+    pieces_ = pieces;
+    next_ = 0;
+    failure_ = nullptr;
+    drain(0);
+    if (failure_) std::rethrow_exception(failure_);
     return;
   }
   {
