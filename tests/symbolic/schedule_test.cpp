@@ -93,10 +93,11 @@ TEST(Schedule, NoSubtreeHoldsMostOfTheWorkWhenThereAreWorkersToShareIt) {
   EXPECT_LT(largest, total / 3);
 }
 
-/// What the workers book beside the doubles of the forecast: their map of positions, and rows rounded up
-/// to 8.
+/// What the workers book beside the doubles of the forecast: their map of positions, rows rounded up to 8,
+/// and up to 100 waiting blocks rounded up to 8 doubles.
 Offset beside_the_doubles(Index rows, int threads) {
-  return threads * (Offset{rows} * Offset{sizeof(Index)} + 7 * 256 * Offset{sizeof(double)});
+  constexpr Offset kDouble = sizeof(double);
+  return threads * (Offset{rows} * Offset{sizeof(Index)} + 7 * 256 * kDouble + 100 * 7 * kDouble);
 }
 
 /// Nothing is delayed in a definite matrix: the forecast must then hold.
