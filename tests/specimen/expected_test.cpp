@@ -25,6 +25,7 @@ std::vector<Case> all_cases() {
     std::istringstream faults(entry.faults);
     for (std::string fault; faults >> fault;) {
       for (const Offset unknowns : {1, 60, 200, 390}) cases.push_back({entry.name, fault, unknowns});
+      if (std::string(entry.name) == "lattice" && fault == "none") cases.push_back({entry.name, fault, 900});
     }
   }
   return cases;
@@ -70,7 +71,7 @@ TEST_P(EverySpecimen, MatricesAreWellFormedAndOfOneOrder) {
 TEST_P(EverySpecimen, InertiaIsTheStatedOne) {
   const Specimen specimen = made(GetParam());
   const ExpectedInertia& expected = specimen.expected.inertia;
-  ASSERT_LE(specimen.stiffness.rows, 500);
+  ASSERT_LE(specimen.stiffness.rows, 1000);
   EXPECT_EQ(expected.negative + expected.zero + expected.positive, specimen.stiffness.rows);
   const SignCount found = testing::signs(dense(specimen.stiffness), 1e-12);
   EXPECT_EQ(found.negative, expected.negative) << expected.why;
