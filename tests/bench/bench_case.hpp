@@ -18,6 +18,7 @@ struct BenchArguments {
   double shift = 0;                  ///< of the pencil: K - s I, K + f G, K - s M
   bool definite = false;             ///< Cholesky-like, stopping at the first pivot that is not positive
   bool keep = false;                 ///< keep the factor
+  bool certified = false;            ///< ours: all factorizations of the certificate, not just one
   bool node_map = false;             ///< ours: tell the ordering which equations share a node
   bool our_order = false;            ///< CHOLMOD: use our ordering instead of its METIS
 };

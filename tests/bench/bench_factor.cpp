@@ -5,7 +5,7 @@
 #include "base/clock.hpp"
 #include "bench/bench_record.hpp"
 #include "bench/process_usage.hpp"
-#include "numeric/factorization.hpp"
+#include "inertia/two_offsets.hpp"
 #include "sparse/scaling.hpp"
 #include "symbolic/analysis.hpp"
 
@@ -26,6 +26,34 @@ T take(Result<T> result) {
 /// The union pattern as a matrix, which is what the ordering takes.
 SymmetricMatrix union_pattern(const MatrixFamily& family) {
   return {family.rows, family.column_start.clone(), family.row.clone(), family.values[0].clone()};
+}
+
+/// One factorization, as every other solver does it.
+void factor_once(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchArguments& arguments,
+                 ThreadPool& pool, BenchRecord& record) {
+  FactorOptions options;
+  options.definite = arguments.definite;
+  options.keep_factor = arguments.keep;
+  const Factorization f = take(factorize(analysis, matrix, options, pool));
+  record.delayed_pivots = f.delayed_pivots;
+  record.negative = f.signs.negative;
+  record.valid = !f.breakdown && !f.stopped;
+  record.definite = record.valid && f.signs.positive == analysis.tree.rows;
+  record.error_bound = f.error_bound;
+}
+
+/// The proved answer, with as many factorizations as it takes.
+void certify(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchArguments& arguments,
+             ThreadPool& pool, BenchRecord& record) {
+  OffsetOptions options;
+  options.definite_first = arguments.definite;
+  const CertifiedInertia found = take(certify_by_offsets(analysis, matrix, options, pool));
+  record.factorizations = found.factorizations;
+  record.delayed_pivots = found.delayed_pivots;
+  record.negative = found.inertia.negative;
+  record.valid = found.certificate.level == Level::kProved && found.inertia.zero == 0;
+  record.definite = found.inertia.positive == analysis.tree.rows;
+  record.error_bound = found.certificate.error_bound;
 }
 
 BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& arguments, ThreadPool& pool) {
@@ -56,23 +84,19 @@ BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& argument
   const Buffer<double> scale = take(power_of_two_scaling(family, bench_case.coefficients));
   record.form_seconds += watch.seconds();
 
-  FactorOptions options;
-  options.definite = arguments.definite;
-  options.keep_factor = arguments.keep;
+  const ShiftedMatrix matrix{&family, bench_case.coefficients, &scale, 0};
   const double processor_before = processor_seconds();
   watch.restart();
-  const Factorization f =
-      take(factorize(analysis, {&family, bench_case.coefficients, &scale, 0}, options, pool));
+  if (arguments.certified) {
+    certify(analysis, matrix, arguments, pool, record);
+  } else {
+    factor_once(analysis, matrix, arguments, pool, record);
+  }
   record.numeric_seconds = watch.seconds();
   record.numeric_cpu_seconds = processor_seconds() - processor_before;
   record.factor_flops = analysis.forecast.factor_flops;
   record.factor_entries = analysis.forecast.factor_entries;
   record.stored_entries = analysis.forecast.stored_factor_entries;
-  record.delayed_pivots = f.delayed_pivots;
-  record.negative = f.signs.negative;
-  record.valid = !f.breakdown && !f.stopped;
-  record.definite = record.valid && f.signs.positive == family.rows;
-  record.error_bound = f.error_bound;
   record.highest_resident = highest_resident_bytes();
   return record;
 }

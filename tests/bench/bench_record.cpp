@@ -25,10 +25,12 @@ void print_record(const BenchArguments& arguments, int repetition, const BenchRe
   line["form_seconds"] = record.form_seconds;
   line["order_seconds"] = record.order_seconds;
   line["analyse_seconds"] = record.analyse_seconds;
+  line["certified"] = arguments.certified;
+  line["factorizations"] = record.factorizations;
   line["numeric_seconds"] = record.numeric_seconds;
   line["numeric_cpu_seconds"] = record.numeric_cpu_seconds;
   line["factor_flops"] = record.factor_flops;
-  line["gflops"] = record.factor_flops / record.numeric_seconds * 1e-9;
+  line["gflops"] = record.factorizations * record.factor_flops / record.numeric_seconds * 1e-9;
   line["factor_entries"] = record.factor_entries;
   line["stored_entries"] = record.stored_entries;
   line["delayed_pivots"] = record.delayed_pivots;

@@ -15,6 +15,7 @@ struct BenchRecord {
   double form_seconds = 0;   ///< merging, permuting, scaling, where the program does it apart
   double order_seconds = 0;  ///< 0 where the program does not tell it from the analysis
   double analyse_seconds = 0;
+  int factorizations = 1;  ///< that numeric_seconds covers
   double numeric_seconds = 0;
   double numeric_cpu_seconds = 0;  ///< user + system, all threads
   double factor_flops = 0;         ///< without relaxation zeros, by the program's own ordering

@@ -1,0 +1,68 @@
+"""Markdown tables of a benchmark run; see ladder.py."""
+
+HEADER = ("| model | rows | question | program | mode | factor-izations | order + analyse s | numeric s (least) | CPU s | "
+          "GFLOP/s | of dgemm | flops e9 | L entries e6 | peak over matrix MB | delayed | negative | "
+          "numeric: ours is | all: ours is | memory: ours is |")
+
+LEGEND = """Medians over the repetitions; one process each, ours and theirs in turn. `least`: the fastest repetition.
+CPU s: user + system of the numeric phase over all threads (a BLAS thread that spins counts). GFLOP/s: flops of the
+program's own ordering without relaxation zeros, over the numeric wall clock. `of dgemm`: against the best rate that the
+dense product reached in this block on as many single-threaded workers. Peak: VmHWM of the process over its resident set with only
+the matrix loaded. `ours is`: their figure over that of `stanchion` (one factorization) on the same question; above 1 we are
+ahead. `stanchion, certified` does the whole certificate: one factorization for a definite matrix, two offsets or more
+otherwise; the peers give no certificate. Threads: our workers; for the peers the threads of the BLAS.
+`!` marks a run that stopped, broke down, failed or was left unresolved.
+"""
+
+
+def seconds_before_numeric(line):
+    return line["form_seconds"] + line["order_seconds"] + line["analyse_seconds"]
+
+
+def ratio(theirs, ours):
+    return f"{theirs / ours:.2f}" if ours > 0 else ""
+
+
+def mode(line):
+    kept = "L kept" if line["factor_kept"] else "L discarded"
+    return ("no pivoting, " if line["mode"] == "definite" else "LDL^T, ") + kept
+
+
+def dgemm_rate(block):
+    key = "gflops_one_thread" if block["threads"] == 1 else "gflops_two_workers"
+    return max(line[key] for line in block["dgemm"])
+
+
+def row(entry, label, line, ours, rate):
+    cells = [entry["model"], line["rows"], entry["question"], label + ("" if line["valid"] else " !"), mode(line),
+             line["factorizations"], f"{seconds_before_numeric(line):.3f}",
+             f"{line['numeric_seconds']:.3f} ({line['least_numeric_seconds']:.3f})",
+             f"{line['numeric_cpu_seconds']:.3f}", f"{line['gflops']:.1f}", f"{100 * line['gflops'] / rate:.0f} %",
+             f"{line['factor_flops'] / 1e9:.2f}", f"{line['factor_entries'] / 1e6:.2f}",
+             f"{line['increase_over_matrix_bytes'] / 1e6:.0f}", line["delayed_pivots"], line["negative"]]
+    if ours is None or label.startswith("stanchion"):
+        cells += ["", "", ""]
+    else:
+        whole = seconds_before_numeric(line) + line["numeric_seconds"]
+        our_whole = seconds_before_numeric(ours) + ours["numeric_seconds"]
+        cells += [ratio(line["numeric_seconds"], ours["numeric_seconds"]), ratio(whole, our_whole),
+                  ratio(line["increase_over_matrix_bytes"], ours["increase_over_matrix_bytes"])]
+    return "| " + " | ".join(str(cell) for cell in cells) + " |"
+
+
+def markdown(blocks):
+    lines = ["# Side by side with the peers", "", LEGEND]
+    for block in blocks:
+        rate = dgemm_rate(block)
+        first = block["dgemm"][0]
+        lines += [f"## BLAS {block['variant']}, {block['threads']} thread(s)", "",
+                  f"{first['blas']}; dgemm at most {rate:.1f} GFLOP/s on {block['threads']} worker(s), "
+                  f"{max(line['gflops_two_blas_threads'] for line in block['dgemm']):.1f} on two threads of the BLAS. "
+                  f"Load average {min(r['load_average'] for r in block['rows']):.1f} to "
+                  f"{max(r['load_average'] for r in block['rows']):.1f}." if block["rows"] else "", "",
+                  HEADER, "|" + "---|" * HEADER.count(" | ") + "---|"]
+        for entry in block["rows"]:
+            ours = entry["results"].get("stanchion")
+            lines += [row(entry, label, line, ours, rate) for label, line in entry["results"].items()]
+        lines.append("")
+    return "\n".join(lines)
