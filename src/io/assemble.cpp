@@ -2,9 +2,9 @@
 
 #include <algorithm>
 #include <cmath>
-#include <cstdint>
-#include <limits>
+#include <cstring>
 
+#include "io/column_order.hpp"
 #include "io/place.hpp"
 #include "io/shortest.hpp"
 
@@ -12,16 +12,6 @@ namespace stanchion {
 namespace {
 
 constexpr std::size_t kPlacesKept = 3;
-constexpr Offset kEntriesPerPiece = Offset{1} << 18;
-
-Index true_row(Index stored) {
-  return stored < 0 ? ~stored : stored;
-}
-
-/// Position in a column: by row, lower triangle before upper.
-std::uint32_t key_of(Index stored) {
-  return static_cast<std::uint32_t>(true_row(stored)) << 1 | (stored < 0 ? 1U : 0U);
-}
 
 /// What one piece of the columns saw; pieces are joined in order, so the result never depends on timing.
 struct Tally {
@@ -53,97 +43,8 @@ struct Tally {
   }
 };
 
-/// True when every entry lies after the one before it, by column and row: no place occurs twice.
-bool strictly_sorted(const EntryList& entries, ThreadPool& pool) {
-  const Offset count = entries.size();
-  const Offset pieces = (count + kEntriesPerPiece - 1) / kEntriesPerPiece;
-  std::atomic<bool> sorted{true};
-  pool.run(pieces, [&](Offset piece, int) {
-    const Offset begin = std::max<Offset>(1, piece * kEntriesPerPiece);
-    const Offset end = std::min(count, (piece + 1) * kEntriesPerPiece);
-    for (Offset k = begin; k < end && sorted.load(std::memory_order_relaxed); ++k) {
-      const Index before = entries.column[k - 1], here = entries.column[k];
-      if (before < here) continue;
-      if (before > here || true_row(entries.row[k - 1]) >= true_row(entries.row[k])) sorted = false;
-    }
-  });
-  return sorted;
-}
-
-Buffer<Offset> count_columns(Index rows, const EntryList& entries) {
-  Buffer<Offset> start(Offset{rows} + 1, 0);
-  for (const Index column : entries.column) ++start[Offset{column} + 1];
-  for (Offset column = 0; column < rows; ++column) start[column + 1] += start[column];
-  return start;
-}
-
-/// Moves rows and values to their columns, keeping file order inside a column. `next` holds the first free
-/// position of each column. The columns themselves are overwritten by the destinations where those fit.
-template <class Destination>
-void scatter(EntryList& entries, Buffer<Offset>& next, Destination* destination, ThreadPool& pool) {
-  const Offset count = entries.size();
-  for (Offset k = 0; k < count; ++k) {
-    const Index column = entries.column[k];
-    destination[k] = static_cast<Destination>(next[column]++);
-  }
-  const Offset pieces = (count + kEntriesPerPiece - 1) / kEntriesPerPiece;
-  const auto move = [&](auto& data) {
-    std::remove_reference_t<decltype(data)> sorted(count);
-    pool.run(pieces, [&](Offset piece, int) {
-      const Offset end = std::min(count, (piece + 1) * kEntriesPerPiece);
-      for (Offset k = piece * kEntriesPerPiece; k < end; ++k) {
-        sorted[static_cast<Offset>(destination[k])] = data[k];
-      }
-    });
-    data = std::move(sorted);
-  };
-  move(entries.row);
-  move(entries.value);
-}
-
-void move_to_columns(EntryList& entries, const Buffer<Offset>& start, ThreadPool& pool) {
-  Buffer<Offset> next = start.clone();
-  if (entries.size() <= Offset{std::numeric_limits<std::uint32_t>::max()}) {
-    scatter(entries, next, reinterpret_cast<std::uint32_t*>(entries.column.data()), pool);
-  } else {
-    Buffer<Offset> destination(entries.size());
-    scatter(entries, next, destination.data(), pool);
-  }
-  entries.column.reset();
-}
-
-/// One column while it is put in order.
-class ColumnSorter {
- public:
-  /// Orders rows [begin, end) by key_of, equal keys in file order.
-  void sort(EntryList& entries, Offset begin, Offset end) {
-    bool ordered = true;
-    for (Offset k = begin + 1; k < end && ordered; ++k) {
-      ordered = key_of(entries.row[k - 1]) <= key_of(entries.row[k]);
-    }
-    if (ordered) return;
-    const auto size = static_cast<std::size_t>(end - begin);
-    order_.resize(size);
-    value_.assign(entries.value.data() + begin, entries.value.data() + end);
-    for (std::size_t i = 0; i < size; ++i) {
-      order_[i] = std::uint64_t{key_of(entries.row[begin + static_cast<Offset>(i)])} << 32 | i;
-    }
-    std::sort(order_.begin(), order_.end());
-    for (std::size_t i = 0; i < size; ++i) {
-      const auto row = static_cast<Index>(order_[i] >> 33);
-      const bool upper = (order_[i] >> 32 & 1) != 0;
-      entries.row[begin + static_cast<Offset>(i)] = upper ? ~row : row;
-      entries.value[begin + static_cast<Offset>(i)] = value_[order_[i] & 0xffffffffU];
-    }
-  }
-
- private:
-  std::vector<std::uint64_t> order_;
-  std::vector<double> value_;
-};
-
 /// Sums duplicates and joins triangles of one sorted column in place; returns the entries left.
-/// `keep_single`: an entry without its mirror image stands for both.
+/// With `mean_of_single` an entry without its mirror image is half of a pair, else it stands for both.
 class ColumnJoiner {
  public:
   ColumnJoiner(EntryList& entries, bool mean_of_single, Tally& tally)
@@ -301,24 +202,23 @@ Tally take_as_sorted(EntryList& entries) {
   return tally;
 }
 
-Status asymmetric(const Tally& tally, const std::string& path) {
+Status asymmetric(const Tally& tally, const std::string& path, const DofMap* dofs) {
+  const auto [row, column] = tally.largest_place;
   const double scale = std::max(std::fabs(tally.at_lower), std::fabs(tally.at_upper));
   return Status::bad_input(
       "asymmetric",
       "the matrix is not symmetric: " + counted(tally.unequal, "pair differs", "pairs differ") +
           "; the largest difference, " + number_text(tally.largest) + " (" +
           number_text(tally.largest / scale) + " of the entry), is between " + number_text(tally.at_lower) +
-          " at row " + std::to_string(tally.largest_place.row + 1) + ", column " +
-          std::to_string(tally.largest_place.column + 1) + " and " + number_text(tally.at_upper) +
+          " at " + entry_name(row, column, dofs) + " and " + number_text(tally.at_upper) +
           " in the mirrored place",
-      at_entry(path, tally.largest_place.row, tally.largest_place.column),
-      "export one triangle only, or analyse (A + A^T)/2 with --symmetric-part");
+      at_entry(path, row, column), "export one triangle only, or analyse (A + A^T)/2 with --symmetric-part");
 }
 
 }  // namespace
 
 Result<SymmetricMatrix> assemble(RawMatrix& raw, bool symmetric_part, const std::string& path,
-                                 ThreadPool& pool, AssemblyFacts& facts) {
+                                 const DofMap* dofs, ThreadPool& pool, AssemblyFacts& facts) {
   facts.entries_read = raw.entries.size();
   const bool mirror = needs_mirror(raw.entries, raw.declared_symmetric);
   Buffer<Offset> start = count_columns(raw.rows, raw.entries);
@@ -332,11 +232,14 @@ Result<SymmetricMatrix> assemble(RawMatrix& raw, bool symmetric_part, const std:
   facts.asymmetry_lower = tally.at_lower;
   facts.asymmetry_upper = tally.at_upper;
   if (tally.overflow.row >= 0) {
-    return Status::bad_input("sum-overflows", "the sum of the entries given for one place is not finite",
+    return Status::bad_input("sum-overflows",
+                             "the sum of the entries given for " +
+                                 entry_name(tally.overflow.row, tally.overflow.column, dofs) +
+                                 " is not finite",
                              at_entry(path, tally.overflow.row, tally.overflow.column),
                              "check the values, or choose units that keep stiffnesses below 1e300");
   }
-  if (tally.unequal > 0 && !symmetric_part) return asymmetric(tally, path);
+  if (tally.unequal > 0 && !symmetric_part) return asymmetric(tally, path, dofs);
   return SymmetricMatrix{raw.rows, std::move(start), std::move(raw.entries.row),
                          std::move(raw.entries.value)};
 }

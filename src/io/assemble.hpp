@@ -39,11 +39,12 @@ struct AssemblyFacts {
 /// (24 bytes an entry with the result, for up to 2^32 entries); nothing extra when the file is sorted by
 /// column. Errors: kBadInput "asymmetric" (place: the entry), "sum-overflows". Same bits for every number of
 /// threads.
+/// Messages name nodes and dofs by `dofs`, which may be null.
 Result<SymmetricMatrix> assemble(RawMatrix& raw, bool symmetric_part, const std::string& path,
-                                 ThreadPool& pool, AssemblyFacts& facts);
+                                 const DofMap* dofs, ThreadPool& pool, AssemblyFacts& facts);
 
 /// Warnings for what assemble found and could resolve, with remedies and lines where the file has lines.
 void report_assembly(const RawMatrix& raw, const AssemblyFacts& facts, bool symmetric_part,
-                     const std::string& path, Warnings& warnings);
+                     const std::string& path, const DofMap* dofs, Warnings& warnings);
 
 }  // namespace stanchion

@@ -6,13 +6,11 @@ namespace stanchion {
 namespace {
 
 void report_duplicates(const RawMatrix& raw, const AssemblyFacts& facts, const std::string& path,
-                       Warnings& warnings) {
+                       const DofMap* dofs, Warnings& warnings) {
   std::string where;
   for (const EntryPlace& place : facts.duplicate_places) {
     where += where.empty() ? "" : "; ";
-    where += "row " + std::to_string(place.row + 1) + ", column " + std::to_string(place.column + 1);
-    if (raw.dofs)
-      where += " (" + raw.dofs->describe(place.row) + " with " + raw.dofs->describe(place.column) + ")";
+    where += entry_name(place.row, place.column, dofs);
     if (!raw.lines_of) continue;
     const auto [first, second] = raw.lines_of(place);
     if (second > 0) where += " (lines " + std::to_string(first) + " and " + std::to_string(second) + ")";
@@ -59,8 +57,8 @@ void report_storage(const RawMatrix& raw, const AssemblyFacts& facts, const std:
 }  // namespace
 
 void report_assembly(const RawMatrix& raw, const AssemblyFacts& facts, bool symmetric_part,
-                     const std::string& path, Warnings& warnings) {
-  if (facts.duplicates > 0) report_duplicates(raw, facts, path, warnings);
+                     const std::string& path, const DofMap* dofs, Warnings& warnings) {
+  if (facts.duplicates > 0) report_duplicates(raw, facts, path, dofs, warnings);
   report_storage(raw, facts, path, warnings);
   if (symmetric_part && facts.largest_asymmetry > 0) {
     const auto [row, column] = facts.asymmetry_place;
@@ -68,8 +66,8 @@ void report_assembly(const RawMatrix& raw, const AssemblyFacts& facts, bool symm
                         "the matrix is not symmetric and (A + A^T)/2 is analysed in its place; the largest "
                         "difference, " +
                             number_text(facts.largest_asymmetry) + ", is between " +
-                            number_text(facts.asymmetry_lower) + " here and " +
-                            number_text(facts.asymmetry_upper) +
+                            number_text(facts.asymmetry_lower) + " at " + entry_name(row, column, dofs) +
+                            " and " + number_text(facts.asymmetry_upper) +
                             " in the mirrored place. Statements hold for the symmetric part only",
                         at_entry(path, row, column)});
   }

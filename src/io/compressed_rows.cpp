@@ -8,7 +8,8 @@
 namespace stanchion {
 namespace {
 
-Status check_entry(Index row, Index column, double value, Index rows, Offset entry, const std::string& path) {
+Status check_entry(Index row, Index column, double value, Index rows, Offset entry, const std::string& path,
+                   const DofMap* dofs) {
   if (row < 0 || row >= rows || column < 0 || column >= rows) {
     const Index wrong = row < 0 || row >= rows ? row : column;
     return Status::bad_input("index-out-of-range",
@@ -17,7 +18,9 @@ Status check_entry(Index row, Index column, double value, Index rows, Offset ent
                              path, "export the matrix again");
   }
   if (!std::isfinite(value)) {
-    return Status::bad_input("not-finite", "the value is not a finite number", at_entry(path, row, column),
+    return Status::bad_input("not-finite",
+                             "the value at " + entry_name(row, column, dofs) + " is not a finite number",
+                             at_entry(path, row, column),
                              "find the element that produced it: often one of zero length or zero area");
   }
   return {};
@@ -54,12 +57,12 @@ Status check_row_pointers(const Buffer<Offset>& pointers, Offset entries, const 
 }
 
 Status spread_rows(const Buffer<Offset>& pointers, Index rows, bool by_columns, EntryList& entries,
-                   const std::string& path) {
+                   const std::string& path, const DofMap* dofs) {
   for (Index line = 0; line < rows; ++line) {
     for (Offset k = pointers[line]; k < pointers[Offset{line} + 1]; ++k) {
       const Index index = entries.row[k];
       const Index row = by_columns ? index : line, column = by_columns ? line : index;
-      if (Status status = check_entry(row, column, entries.value[k], rows, k, path); !status.ok())
+      if (Status status = check_entry(row, column, entries.value[k], rows, k, path, dofs); !status.ok())
         return status;
       entries.set(k, row, column, entries.value[k]);
     }
@@ -67,10 +70,10 @@ Status spread_rows(const Buffer<Offset>& pointers, Index rows, bool by_columns, 
   return {};
 }
 
-Status fold_entries(Index rows, EntryList& entries, const std::string& path) {
+Status fold_entries(Index rows, EntryList& entries, const std::string& path, const DofMap* dofs) {
   for (Offset k = 0; k < entries.size(); ++k) {
     const Index row = entries.row[k], column = entries.column[k];
-    if (Status status = check_entry(row, column, entries.value[k], rows, k, path); !status.ok())
+    if (Status status = check_entry(row, column, entries.value[k], rows, k, path, dofs); !status.ok())
       return status;
     entries.set(k, row, column, entries.value[k]);
   }

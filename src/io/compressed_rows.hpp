@@ -18,11 +18,12 @@ Status check_shape(Offset rows, Offset columns, const std::string& path);
 Status check_row_pointers(const Buffer<Offset>& pointers, Offset entries, const std::string& path);
 
 /// Fills `entries`, whose `row` holds the index of each entry as the file has it, from the pointers; these
-/// are by rows, or `by_columns`. "index-out-of-range" and "not-finite" name the entry.
+/// are by rows, or `by_columns`. "index-out-of-range" and "not-finite" name the entry
+/// (by node and dof where `dofs` is not null).
 Status spread_rows(const Buffer<Offset>& pointers, Index rows, bool by_columns, EntryList& entries,
-                   const std::string& path);
+                   const std::string& path, const DofMap* dofs);
 
 /// The same checks for entries given one by one: `row` and `column` hold the file's indices.
-Status fold_entries(Index rows, EntryList& entries, const std::string& path);
+Status fold_entries(Index rows, EntryList& entries, const std::string& path, const DofMap* dofs);
 
 }  // namespace stanchion

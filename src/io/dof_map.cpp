@@ -77,4 +77,11 @@ DofMap DofMap::subset(const std::vector<Index>& original) const {
   return map;
 }
 
+std::string entry_name(Index row, Index column, const DofMap* dofs) {
+  std::string name = "row " + std::to_string(row + 1) + ", column " + std::to_string(column + 1);
+  if (dofs == nullptr || std::max(row, column) >= dofs->equations()) return name;
+  if (row == column) return name + " (" + dofs->describe(row) + ")";
+  return name + " (" + dofs->describe(row) + " with " + dofs->describe(column) + ")";
+}
+
 }  // namespace stanchion

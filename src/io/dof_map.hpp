@@ -65,6 +65,10 @@ class DofMap {
   mutable Index indexed_ = 0;
 };
 
+/// "row 3, column 2", and with a map of the matrix " (node 12, ux with node 7, rz)"; for messages. `dofs` may
+/// be null or, while its size is still to be checked, too short.
+std::string entry_name(Index row, Index column, const DofMap* dofs);
+
 /// Reads a `--dofs` file: CSV `equation,node,dof`, header line optional, equations 1 to n each exactly once
 /// in any order; node may be empty for multipliers. Plain or .gz. Errors (kBadInput, with file:line): those
 /// of reading CSV, "missing-field", "bad-number", "index-out-of-range", "duplicate-equation",

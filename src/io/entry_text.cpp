@@ -96,8 +96,10 @@ class LineParser {
   Status explain(const char* p, const char* end, Offset line) const {
     const std::string place = at_line(path_, line);
     p = skip_blanks(p, end);
-    for (const char* name : {"row", "column"}) {
-      Offset index = 0;
+    Offset entry[2] = {0, 0};
+    for (const std::size_t side : {0U, 1U}) {
+      const char* const name = side == 0 ? "row" : "column";
+      Offset& index = entry[side];
       const std::string_view field = field_at(p, end);
       const NumberFault fault = scan_whole(p, end, index);
       if (fault == NumberFault::kMissing) return missing(name, place);
@@ -112,11 +114,16 @@ class LineParser {
                                  place, "correct the index, or the size the file announces");
       }
       if (!pass_separator(p, end)) {
-        return skip_blanks(p, end) == end ? missing(name == std::string("row") ? "column" : "value", place)
+        return skip_blanks(p, end) == end ? missing(side == 0 ? "column" : "value", place)
                                           : extra(p, end, place);
       }
     }
-    return explain_value(p, end, place);
+    // Without a map the line says enough; the base of triplet text is not even known yet.
+    const std::string where =
+        rules_.dofs == nullptr ? std::string()
+                               : " at " + entry_name(static_cast<Index>(entry[0] - rules_.base),
+                                                     static_cast<Index>(entry[1] - rules_.base), rules_.dofs);
+    return explain_value(p, end, place, where);
   }
 
  private:
@@ -129,13 +136,14 @@ class LineParser {
     return true;
   }
 
-  Status explain_value(const char* p, const char* end, const std::string& place) const {
+  Status explain_value(const char* p, const char* end, const std::string& place,
+                       const std::string& where) const {
     double value = 0;
     bool exact = true;
     const std::string_view field = field_at(p, end);
     const NumberFault fault =
         rules_.whole_numbers ? scan_integer_value(p, end, value, exact) : scan_real(p, end, value);
-    const std::string shown = "\"" + excerpt(field) + "\"";
+    const std::string shown = "\"" + excerpt(field) + "\"" + where;
     switch (fault) {
       case NumberFault::kMissing:
         return missing("value", place);

@@ -18,6 +18,7 @@ struct EntryRules {
   Index rows = 0;                   ///< every index lies in [base, base + rows)
   bool whole_numbers = false;       ///< values must be whole numbers and are refused when they round
   std::optional<Offset> announced;  ///< entries the file says it holds
+  const DofMap* dofs = nullptr;     ///< names the entry in messages about its value
 };
 
 /// The part of a text that holds the entries.

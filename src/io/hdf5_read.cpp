@@ -41,8 +41,8 @@ herr_t collect(hid_t root, const char* name, const H5O_info_t* facts, void* foun
 
 class Hdf5Reader {
  public:
-  Hdf5Reader(const std::string& path, const std::string& group, Offset most_bytes)
-      : path_(path), wanted_(group), most_bytes_(most_bytes) {}
+  Hdf5Reader(const std::string& path, const std::string& group, Offset most_bytes, const DofMap* dofs)
+      : path_(path), wanted_(group), most_bytes_(most_bytes), dofs_(dofs) {}
 
   Result<RawMatrix> read() {
     const Handle file(H5Fopen(path_.c_str(), H5F_ACC_RDONLY, H5P_DEFAULT), H5Fclose);
@@ -273,19 +273,21 @@ class Hdf5Reader {
                                        });
     if (!status.ok()) return status;
     if (status = check_row_pointers(start, raw.entries.size(), path_); !status.ok()) return status;
-    return spread_rows(start, raw.rows, by_columns, raw.entries, path_);
+    return spread_rows(start, raw.rows, by_columns, raw.entries, path_, dofs_);
   }
 
   const std::string& path_;
   const std::string& wanted_;
   Offset most_bytes_;
+  const DofMap* dofs_;
 };
 
 }  // namespace
 
-Result<RawMatrix> read_hdf5(const std::string& path, const std::string& group, Offset most_bytes) {
+Result<RawMatrix> read_hdf5(const std::string& path, const std::string& group, Offset most_bytes,
+                            const DofMap* dofs) {
   const hdf5::Session session;
-  return Hdf5Reader(path, group, most_bytes).read();
+  return Hdf5Reader(path, group, most_bytes, dofs).read();
 }
 
 }  // namespace stanchion

@@ -42,7 +42,8 @@ Result<RawMatrix> read_boeing(const ReadTask& task);
 Result<RawMatrix> read_npz(const ReadTask& task);
 
 /// HDF5 group with data, indices, indptr and shape; `group` empty: the only such group of the file.
-Result<RawMatrix> read_hdf5(const std::string& path, const std::string& group, Offset most_bytes);
+Result<RawMatrix> read_hdf5(const std::string& path, const std::string& group, Offset most_bytes,
+                            const DofMap* dofs);
 
 /// Values of a diagonal, from a body of one value a line.
 Result<RawMatrix> read_diagonal_body(const ReadTask& task, std::string_view body, Offset first_line,

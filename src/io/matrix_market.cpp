@@ -154,6 +154,7 @@ Result<RawMatrix> read_matrix_market(const ReadTask& task) {
   rules.rows = raw.rows;
   rules.whole_numbers = header->whole_numbers;
   rules.announced = header->entries;
+  rules.dofs = task.options.dofs;
   const TextBody body{walker.rest(), first_line};
   auto parsed = parse_entries(body, rules, task.path(), task.most_bytes, task.digest, task.pool);
   if (!parsed.ok()) return parsed.status();

@@ -166,7 +166,7 @@ class NpzReader {
         read_wholes("indptr", pointers.size(), [&](Offset at, Offset pointer) { pointers[at] = pointer; });
     if (!status.ok()) return status;
     if (status = check_row_pointers(pointers, count, path_); !status.ok()) return status;
-    return spread_rows(pointers, rows_, format_ == "csc", entries, path_);
+    return spread_rows(pointers, rows_, format_ == "csc", entries, path_, task_.options.dofs);
   }
 
   Status read_coordinates(EntryList& entries) {
@@ -175,7 +175,7 @@ class NpzReader {
     if (!status.ok()) return status;
     status = read_wholes("col", entries.size(),
                          [&](Offset at, Offset index) { entries.column[at] = narrow(index); });
-    return status.ok() ? fold_entries(rows_, entries, path_) : status;
+    return status.ok() ? fold_entries(rows_, entries, path_, task_.options.dofs) : status;
   }
 
   const ReadTask& task_;

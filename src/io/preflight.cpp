@@ -88,8 +88,12 @@ class Inspector {
     facts.negative_diagonals = negative_.count;
   }
 
+  Index number(Index row) const {
+    return subject_.original != nullptr ? (*subject_.original)[static_cast<std::size_t>(row)] : row;
+  }
+
   std::string name(Index row) const {
-    std::string text = "row " + std::to_string(row + 1);
+    std::string text = "row " + std::to_string(number(row) + 1);
     if (subject_.dofs != nullptr && row < subject_.dofs->equations()) {
       text += " (" + subject_.dofs->describe(row) + ")";
     }
@@ -109,7 +113,7 @@ class Inspector {
     if (finding.count == 0) return;
     result_.warnings.push_back({code,
                                 counted(finding.count, one, many) + ": " + names(finding) + ". " + advice,
-                                at_row(subject_.path, finding.first.front())});
+                                at_row(subject_.path, number(finding.first.front()))});
   }
 
   void report_rows() {
@@ -144,7 +148,7 @@ class Inspector {
              number_text(facts.least_diagonal) + " at " + name(least_row_) + " to " +
              number_text(facts.greatest_diagonal) + " at " + name(greatest_row_) +
              ". Look for penalty stiffnesses and mixed units; use constraint equations in place of penalties",
-         at_row(subject_.path, greatest_row_)});
+         at_row(subject_.path, number(greatest_row_))});
   }
 
   void report_parts() {
@@ -168,7 +172,7 @@ class Inspector {
                       : "Each must be supported by itself; dofs of one node that do not act on each other "
                         "(in-plane "
                         "and bending) are such parts too, which --dofs would tell apart"),
-         at_row(subject_.path, parts.first_rows[1])});
+         at_row(subject_.path, number(parts.first_rows[1]))});
   }
 
   const PreflightSubject& subject_;

@@ -11,13 +11,15 @@
 
 namespace stanchion {
 
-/// The matrix under inspection. Pointees outlive the call; `dofs` and `multipliers` may be null.
+/// The matrix under inspection. Pointees outlive the call; `dofs`, `multipliers` and
+/// `original` may be null; the first two are numbered like `matrix`.
 struct PreflightSubject {
   const SymmetricMatrix& matrix;
   std::string path;
   MatrixRole role = MatrixRole::kStiffness;
   const DofMap* dofs = nullptr;                     ///< names nodes and dofs in the findings
   const std::vector<Index>* multipliers = nullptr;  ///< equations whose diagonal is rightly zero
+  const std::vector<Index>* original = nullptr;     ///< of a struck matrix: equation numbers in the file
 };
 
 /// Counts behind the findings.

@@ -55,11 +55,12 @@ Result<RawMatrix> read_raw(const ReadTask& task) {
 Result<MatrixFile> finish(RawMatrix& raw, const std::string& path, const MatrixReadOptions& options,
                           FileDigest& digest, ThreadPool& pool) {
   MatrixFile file;
-  auto matrix = assemble(raw, options.symmetric_part, path, pool, file.facts);
+  const DofMap* dofs = raw.dofs ? &*raw.dofs : options.dofs;
+  auto matrix = assemble(raw, options.symmetric_part, path, dofs, pool, file.facts);
   if (!matrix.ok()) return matrix.status();
   file.matrix = std::move(*matrix);
   file.warnings = std::move(raw.warnings);
-  report_assembly(raw, file.facts, options.symmetric_part, path, file.warnings);
+  report_assembly(raw, file.facts, options.symmetric_part, path, dofs, file.warnings);
   file.sha256 = digest.hex();
   file.format = std::move(raw.format);
   file.dofs = std::move(raw.dofs);
@@ -81,7 +82,7 @@ Result<MatrixFile> read_hdf5_file(const std::string& file, const std::string& gr
                                   const MatrixReadOptions& options, ThreadPool& pool) {
   auto mapped = MappedFile::open(file);
   if (!mapped.ok()) return mapped.status();
-  auto raw = read_hdf5(file, group, memory_limit(options));
+  auto raw = read_hdf5(file, group, memory_limit(options), options.dofs);
   if (!raw.ok()) return raw.status();
   FileDigest digest(mapped->bytes());
   return finish(*raw, group.empty() ? file : file + ":" + group, options, digest, pool);

@@ -61,6 +61,7 @@ Result<RawMatrix> read_triplet_text(const ReadTask& task, char separator) {
   const TextBody body = body_after_header(task.source.text(), separator);
   EntryRules rules;
   rules.separator = separator;
+  if (task.options.base) rules.dofs = task.options.dofs;
   rules.base = task.options.base.value_or(0);
   rules.rows = task.options.rows.value_or(std::numeric_limits<Index>::max() - 1);
   if (task.options.rows && !task.options.base) ++rules.rows;  // both numberings, until it is decided

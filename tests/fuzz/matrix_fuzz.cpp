@@ -16,7 +16,7 @@ MatrixReadOptions options_from(std::uint8_t choice) {
   options.symmetric_part = (choice & 2) != 0;
   if ((choice & 4) != 0) options.base = choice >> 3 & 1;
   if ((choice & 16) != 0) options.rows = 100;
-  options.memory_limit_bytes = Offset{1} << 26;
+  options.memory_limit_bytes = Offset{1} << 21;
   return options;
 }
 

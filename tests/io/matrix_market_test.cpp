@@ -131,6 +131,24 @@ TEST(MatrixMarket, AnAbsentMirrorImageCountsAsZero) {
   EXPECT_EQ(one->matrix.value[1], 7);
 }
 
+TEST(MatrixMarket, WithAMapNodesAndDofsAreNamed) {
+  DofMap map;
+  map.append(10, "ux");
+  map.append(20, "rz");
+  MatrixReadOptions options;
+  options.dofs = &map;
+  const auto names = [](const Status& status, const char* words) {
+    EXPECT_NE(status.message().find(words), std::string::npos) << status.message();
+  };
+  names(read_text(kGeneral + "2 2 2\n2 1 5\n1 2 4\n", options).status(), "(node 20, rz with node 10, ux)");
+  names(read_text(kGeneral + "2 2 1\n2 2 nan\n", options).status(), "(node 20, rz)");
+  names(read_text(kGeneral + "2 2 2\n1 1 1e308\n1 1 1e308\n", options).status(), "(node 10, ux)");
+  const auto file = read_text(kGeneral + "2 2 2\n1 1 5\n1 1 4\n", options);
+  ASSERT_TRUE(file.ok());
+  EXPECT_NE(file->warnings.at(0).message.find("(node 10, ux) (lines 3 and 4)"), std::string::npos)
+      << file->warnings[0].message;
+}
+
 TEST(MatrixMarket, AnArrayIsADiagonalMassOnly) {
   MatrixReadOptions mass;
   mass.role = MatrixRole::kMass;

@@ -75,6 +75,17 @@ TEST(Preflight, ASecondMatrixMayBeEmptyAndNegativeInPlaces) {
   EXPECT_EQ(mass.warnings[0].code, "negative-diagonal");
 }
 
+TEST(Preflight, AStruckMatrixIsReportedInTheNumbersOfTheFile) {
+  const std::vector<Index> original{0, 4, 7};
+  const auto report = preflight({from_triplets(3, {{0, 0, 1.5}, {1, 1, -2}, {2, 0, 1}, {2, 2, 3}}), "k.mtx",
+                                 MatrixRole::kStiffness, nullptr, nullptr, &original});
+  ASSERT_TRUE(report.ok());
+  const Warning* warning = testing::find_warning(report->warnings, "negative-diagonal");
+  ASSERT_NE(warning, nullptr);
+  EXPECT_EQ(warning->place, "k.mtx, row 5");
+  EXPECT_NE(warning->message.find("row 5."), std::string::npos) << warning->message;
+}
+
 TEST(Preflight, SizesMustAgree) {
   const auto three = from_triplets(3, {{0, 0, 1}}), four = from_triplets(4, {{0, 0, 1}});
   EXPECT_TRUE(check_same_size(three, "k.mtx", three, "g.mtx").ok());
