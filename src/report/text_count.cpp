@@ -15,12 +15,22 @@ std::string count_in_words(const ShiftCount& count) {
 }
 
 std::string backing(const ShiftCount& count) {
-  std::string text = backing_in_words(count.level, count.failure_probability);
-  if (count.method == "offsets")
+  std::string text;
+  if (count.level == Level::kStatistical && count.failure_probability) {
+    text = "statistics, wrong with probability at most " + rounded(*count.failure_probability);
+  } else {
+    text = backing_in_words(count.level, count.failure_probability);
+  }
+  if (count.method == "offsets") {
     text += count.certificate.runs.size() == 1 ? ", from one factor" : ", from factors on both sides";
-  if (count.method == "relative") text += ", from one factor compared with the matrix";
+  }
   if (count.certificate.precision == "single") text += ", in single precision";
   return text;
+}
+
+bool any_relative(const std::vector<ShiftCount>& counts) {
+  return std::any_of(counts.begin(), counts.end(),
+                     [](const ShiftCount& count) { return count.method == "relative"; });
 }
 
 /// How near to the shift an eigenvalue would have to lie for the count to be off; "-" when nothing can.
@@ -87,6 +97,9 @@ void write_count(Page& page, const Outcome& outcome) {
   page.table(rows_of(answer.counts), any_margin(answer.counts) ? 3 : 2);
   if (any_margin(answer.counts)) {
     page.sentence("A count is exact unless one of what is counted lies within the margin of its shift.");
+  }
+  if (any_relative(answer.counts)) {
+    page.sentence("Statistics: the factor was held against the matrix itself, on random vectors.");
   }
 }
 

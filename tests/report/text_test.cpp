@@ -80,6 +80,19 @@ TEST(Text, CountsAreATable) {
   EXPECT_TRUE(says(samples::counted(), "definite at every f in [0, 1.5]"));
 }
 
+TEST(Text, StatisticalCountsSayHowSureTheyAre) {
+  Outcome outcome = samples::counted();
+  ShiftCount& count = outcome.count->counts[2];
+  count.level = Level::kStatistical;
+  count.method = "relative";
+  count.failure_probability = 2.5e-7;
+  count.certificate.runs.clear();
+  EXPECT_TRUE(says(outcome, "     12     17   1e-09  statistics, wrong with probability at most 2.5e-07\n"));
+  EXPECT_TRUE(
+      says(outcome, "\nStatistics: the factor was held against the matrix itself, on random vectors.\n"));
+  EXPECT_FALSE(says(samples::counted(), "Statistics:"));
+}
+
 TEST(Text, DifferentMeaningsGetAColumn) {
   Outcome outcome = samples::counted();
   outcome.count->counts[1].meaning = "critical factors between f and 0";
