@@ -98,6 +98,7 @@ TEST(Arena, MovingTakesTheStackAlong) {
 
 TEST(Arena, MoreThanTheAddressSpaceThrows) {
   EXPECT_THROW(Arena(Offset{1} << 50), std::bad_alloc);
+  EXPECT_THROW(Arena(Offset{1} << 58), std::bad_alloc) << "the byte count must not wrap around";
 }
 
 TEST(Arena, RandomStackDiscipline) {

@@ -48,7 +48,7 @@ TEST(ThreadPool, WhatThePiecesWroteIsSeenByTheCaller) {
 }
 
 TEST(ThreadPool, AnExceptionReachesTheCallerAfterTheOthersFinished) {
-  for (int threads = 2; threads <= 4; ++threads) {
+  for (int threads = 1; threads <= 4; ++threads) {
     ThreadPool pool(threads);
     for (int round = 0; round < 50; ++round) {
       std::atomic<int> runs{0};
@@ -69,11 +69,6 @@ TEST(ThreadPool, OfSeveralExceptionsOneArrivesAndThePoolStaysUsable) {
   std::atomic<int> runs{0};
   pool.run(40, [&](Offset, int) { ++runs; });
   EXPECT_EQ(runs, 40);
-}
-
-TEST(ThreadPool, AnExceptionPassesThroughASingleThread) {
-  ThreadPool pool(1);
-  EXPECT_THROW(pool.run(3, [](Offset, int) { throw std::runtime_error("alone"); }), std::runtime_error);
 }
 
 TEST(ThreadPool, ManyPoolsComeAndGo) {
