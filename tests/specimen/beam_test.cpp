@@ -3,6 +3,8 @@
 
 #include <gtest/gtest.h>
 
+#include <Eigen/Geometry>
+
 #include "specimen/dense_spectrum.hpp"
 
 namespace stanchion::specimen {

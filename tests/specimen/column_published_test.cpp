@@ -9,7 +9,6 @@
 #include "specimen/line_element.hpp"
 #include "specimen/member_part.hpp"
 #include "specimen/specimen.hpp"
-#include "specimen/subspace.hpp"
 
 namespace stanchion {
 namespace {

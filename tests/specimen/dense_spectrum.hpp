@@ -2,9 +2,8 @@
 // against.
 #pragma once
 
-#include <Eigen/Dense>
-#include <algorithm>
-#include <cmath>
+#include <Eigen/Core>
+#include <Eigen/LU>
 #include <vector>
 
 #include "sparse/symmetric_matrix.hpp"
@@ -12,15 +11,7 @@
 
 namespace stanchion::testing {
 
-inline Eigen::MatrixXd dense(const SymmetricMatrix& matrix) {
-  Eigen::MatrixXd full = Eigen::MatrixXd::Zero(matrix.rows, matrix.rows);
-  for (Index column = 0; column < matrix.rows; ++column) {
-    for (Offset k = matrix.column_start[column]; k < matrix.column_start[Offset{column} + 1]; ++k) {
-      full(matrix.row[k], column) = full(column, matrix.row[k]) = matrix.value[k];
-    }
-  }
-  return full;
-}
+Eigen::MatrixXd dense(const SymmetricMatrix& matrix);
 
 template <int n>
 Eigen::MatrixXd dense(const specimen::ElementMatrix<n>& matrix) {
@@ -32,47 +23,28 @@ Eigen::MatrixXd dense(const specimen::ElementMatrix<n>& matrix) {
 }
 
 /// S A S with S = diag(|a_ii|)^-1/2 (1 where a_ii = 0): the same inertia, without the mixed units.
-inline Eigen::MatrixXd scaled(const Eigen::MatrixXd& a) {
-  Eigen::VectorXd s(a.rows());
-  for (Eigen::Index i = 0; i < a.rows(); ++i) s(i) = a(i, i) == 0 ? 1 : 1 / std::sqrt(std::abs(a(i, i)));
-  return s.asDiagonal() * a * s.asDiagonal();
-}
+Eigen::MatrixXd scaled(const Eigen::MatrixXd& a);
 
-inline Eigen::VectorXd eigenvalues(const Eigen::MatrixXd& a) {
-  return Eigen::SelfAdjointEigenSolver<Eigen::MatrixXd>(a, Eigen::EigenvaluesOnly).eigenvalues();
-}
+/// All eigenvalues, ascending.
+Eigen::VectorXd eigenvalues(const Eigen::MatrixXd& a);
 
 struct SignCount {
   Index negative = 0, zero = 0, positive = 0;
-  bool operator==(const SignCount&) const = default;
 };
 
 /// Eigenvalues of the scaled matrix by sign; zero means within `resolution`.
-inline SignCount signs(const Eigen::MatrixXd& a, double resolution) {
-  SignCount count;
-  for (const double value : eigenvalues(scaled(a))) {
-    ++(value < -resolution ? count.negative : value > resolution ? count.positive : count.zero);
-  }
-  return count;
-}
+SignCount signs(const Eigen::MatrixXd& a, double resolution);
 
-/// Critical factors f of K + f G, K positive definite, ascending by magnitude, those of positive sign only:
-/// -G x = mu K x with mu = 1 / f.
-inline std::vector<double> critical_factors(const Eigen::MatrixXd& k, const Eigen::MatrixXd& g) {
-  const Eigen::GeneralizedSelfAdjointEigenSolver<Eigen::MatrixXd> solver(-g, k, Eigen::EigenvaluesOnly);
-  std::vector<double> factors;
-  const double largest = solver.eigenvalues().cwiseAbs().maxCoeff();
-  for (const double mu : solver.eigenvalues()) {
-    if (mu > 1e-10 * largest) factors.push_back(1 / mu);
-  }
-  std::sort(factors.begin(), factors.end());
-  return factors;
-}
+/// Critical factors f > 0 of K + f G, K positive definite, ascending: -G x = mu K x with mu = 1 / f.
+std::vector<double> critical_factors(const Eigen::MatrixXd& k, const Eigen::MatrixXd& g);
 
 /// Eigenvalues s of K - s M, M positive definite, ascending.
-inline std::vector<double> pencil_values(const Eigen::MatrixXd& k, const Eigen::MatrixXd& m) {
-  const Eigen::GeneralizedSelfAdjointEigenSolver<Eigen::MatrixXd> solver(k, m, Eigen::EigenvaluesOnly);
-  return {solver.eigenvalues().begin(), solver.eigenvalues().end()};
-}
+std::vector<double> pencil_values(const Eigen::MatrixXd& k, const Eigen::MatrixXd& m);
+
+/// The `wanted` values v smallest in magnitude of K x = v b B x, K positive definite, B symmetric (b B = -G
+/// for the critical factors of K + f G, M for the squared frequencies), by subspace iteration to a relative
+/// change of 1e-12: for meshes too fine for dense eigenvalues.
+std::vector<double> lowest_values_of(const SymmetricMatrix& k, const SymmetricMatrix& b, int wanted,
+                                     double sign_of_b);
 
 }  // namespace stanchion::testing

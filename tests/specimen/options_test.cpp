@@ -2,6 +2,8 @@
 // them.
 #include <gtest/gtest.h>
 
+#include <algorithm>
+
 #include "specimen/dense_spectrum.hpp"
 #include "specimen/specimen.hpp"
 
@@ -63,6 +65,28 @@ TEST(Options, ColumnFactsHoldForEveryEnd) {
     for (const Offset unknowns : {6, 60, 240}) counts += checked_counts("column", unknowns, options);
   }
   EXPECT_GE(counts, 50);
+}
+
+TEST(Options, ColumnEntriesHoldNoRounding) {
+  // Lifting and turning the whole free column must give forces that vanish to the last bit.
+  SpecimenOptions options;
+  options.fault = Fault::kFree;
+  const auto column = make_specimen("column", 9000, options);
+  const SymmetricMatrix& k = column->stiffness;
+  std::vector<double> motion(static_cast<std::size_t>(k.rows)), force(motion.size(), 0.0);
+  for (std::size_t i = 0; i < motion.size(); ++i) {
+    const double z = column->nodes[static_cast<std::size_t>(column->dofs[i].node - 1)].z;
+    const specimen::Dof dof = column->dofs[i].dof;
+    motion[i] = dof == specimen::Dof::kUx ? 3 + 2 * z : dof == specimen::Dof::kUz ? 5 : 2;
+  }
+  for (Index c = 0; c < k.rows; ++c) {
+    for (Offset e = k.column_start[c]; e < k.column_start[Offset{c} + 1]; ++e) {
+      const auto column_at = static_cast<std::size_t>(c), row_at = static_cast<std::size_t>(k.row[e]);
+      force[row_at] += k.value[e] * motion[column_at];
+      if (row_at != column_at) force[column_at] += k.value[e] * motion[row_at];
+    }
+  }
+  EXPECT_TRUE(std::all_of(force.begin(), force.end(), [](double f) { return f == 0; }));
 }
 
 TEST(Options, LumpedMassIsDiagonalAndAsHeavy) {

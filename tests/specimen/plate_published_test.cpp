@@ -3,8 +3,8 @@
 
 #include <numbers>
 
+#include "specimen/dense_spectrum.hpp"
 #include "specimen/specimen.hpp"
-#include "specimen/subspace.hpp"
 
 namespace stanchion {
 namespace {

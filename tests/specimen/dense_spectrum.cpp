@@ -1,17 +1,15 @@
-// The lowest values of a sparse pencil by subspace iteration: for meshes too fine for dense eigenvalues.
-#pragma once
+#include "specimen/dense_spectrum.hpp"
 
-#include <Eigen/Dense>
+#include <Eigen/Eigenvalues>
 #include <Eigen/Sparse>
+#include <Eigen/SparseCholesky>
 #include <algorithm>
 #include <cmath>
-#include <vector>
-
-#include "sparse/symmetric_matrix.hpp"
 
 namespace stanchion::testing {
+namespace {
 
-inline Eigen::SparseMatrix<double> sparse(const SymmetricMatrix& matrix) {
+Eigen::SparseMatrix<double> sparse(const SymmetricMatrix& matrix) {
   std::vector<Eigen::Triplet<double>> entries;
   for (Index column = 0; column < matrix.rows; ++column) {
     for (Offset k = matrix.column_start[column]; k < matrix.column_start[Offset{column} + 1]; ++k) {
@@ -24,10 +22,54 @@ inline Eigen::SparseMatrix<double> sparse(const SymmetricMatrix& matrix) {
   return full;
 }
 
-/// The `wanted` values v smallest in magnitude of K x = v B x, K positive definite, B symmetric (pass -G for
-/// the critical factors of K + f G, M for the squared frequencies), to a relative change of about 1e-11.
-inline std::vector<double> lowest_values_of(const SymmetricMatrix& k, const SymmetricMatrix& b, int wanted,
-                                            double sign_of_b) {
+}  // namespace
+
+Eigen::MatrixXd dense(const SymmetricMatrix& matrix) {
+  Eigen::MatrixXd full = Eigen::MatrixXd::Zero(matrix.rows, matrix.rows);
+  for (Index column = 0; column < matrix.rows; ++column) {
+    for (Offset k = matrix.column_start[column]; k < matrix.column_start[Offset{column} + 1]; ++k) {
+      full(matrix.row[k], column) = full(column, matrix.row[k]) = matrix.value[k];
+    }
+  }
+  return full;
+}
+
+Eigen::MatrixXd scaled(const Eigen::MatrixXd& a) {
+  Eigen::VectorXd s(a.rows());
+  for (Eigen::Index i = 0; i < a.rows(); ++i) s(i) = a(i, i) == 0 ? 1 : 1 / std::sqrt(std::abs(a(i, i)));
+  return s.asDiagonal() * a * s.asDiagonal();
+}
+
+Eigen::VectorXd eigenvalues(const Eigen::MatrixXd& a) {
+  return Eigen::SelfAdjointEigenSolver<Eigen::MatrixXd>(a, Eigen::EigenvaluesOnly).eigenvalues();
+}
+
+SignCount signs(const Eigen::MatrixXd& a, double resolution) {
+  SignCount count;
+  for (const double value : eigenvalues(scaled(a))) {
+    ++(value < -resolution ? count.negative : value > resolution ? count.positive : count.zero);
+  }
+  return count;
+}
+
+std::vector<double> critical_factors(const Eigen::MatrixXd& k, const Eigen::MatrixXd& g) {
+  const std::vector<double> inverse = pencil_values(-g, k);
+  const double largest = std::max(std::abs(inverse.front()), std::abs(inverse.back()));
+  std::vector<double> factors;
+  for (const double mu : inverse) {
+    if (mu > 1e-10 * largest) factors.push_back(1 / mu);
+  }
+  std::sort(factors.begin(), factors.end());
+  return factors;
+}
+
+std::vector<double> pencil_values(const Eigen::MatrixXd& k, const Eigen::MatrixXd& m) {
+  const Eigen::GeneralizedSelfAdjointEigenSolver<Eigen::MatrixXd> solver(k, m, Eigen::EigenvaluesOnly);
+  return {solver.eigenvalues().begin(), solver.eigenvalues().end()};
+}
+
+std::vector<double> lowest_values_of(const SymmetricMatrix& k, const SymmetricMatrix& b, int wanted,
+                                     double sign_of_b) {
   const Eigen::SparseMatrix<double> left = sparse(k), right = sign_of_b * sparse(b);
   const Eigen::SimplicialLLT<Eigen::SparseMatrix<double>> factor(left);
   const Eigen::Index width = std::min<Eigen::Index>(k.rows, 2 * wanted + 6);
