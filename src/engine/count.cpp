@@ -179,7 +179,8 @@ class Counter {
     count.below_range = {least, least + inertia.zero};
     if (inertia.zero == 0) {
       count.below = least;
-      count.level = Level::kProved;
+      count.level = found->certificate.level;
+      count.failure_probability = found->certificate.failure_probability;
     } else {
       warn("shift-at-eigenvalue",
            "at shift " + number(shift) + " the count lies between " + std::to_string(count.below_range.first) + " and " +
@@ -224,7 +225,7 @@ class Counter {
   void say_convexity() {
     double low = 0, high = 0;
     for (const ShiftCount& count : outcome_.count->counts) {
-      if (count.level != Level::kProved || count.below != 0) continue;
+      if (count.level == Level::kNone || count.below != 0) continue;
       low = std::min(low, count.shift);
       high = std::max(high, count.shift);
     }

@@ -1,5 +1,7 @@
 #include "engine/host.hpp"
 
+#include <unistd.h>
+
 #include <cstdio>
 #include <cstring>
 #include <memory>
@@ -31,6 +33,8 @@ Offset status_bytes(const char* key) {
 HostRecord describe_host() { return {available_processors(), blas_description(), kernels().isa}; }
 
 Offset resident_bytes() { return status_bytes("VmRSS"); }
+
+Offset total_memory_bytes() { return Offset{sysconf(_SC_PHYS_PAGES)} * sysconf(_SC_PAGE_SIZE); }
 
 Offset peak_resident_bytes() { return status_bytes("VmHWM"); }
 

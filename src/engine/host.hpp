@@ -11,4 +11,7 @@ HostRecord describe_host();
 Offset resident_bytes();
 Offset peak_resident_bytes();
 
+/// Memory of this machine.
+Offset total_memory_bytes();
+
 }  // namespace stanchion

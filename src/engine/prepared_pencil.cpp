@@ -5,6 +5,7 @@
 #include <unordered_map>
 
 #include "base/clock.hpp"
+#include "base/counter_random.hpp"
 #include "engine/host.hpp"
 #include "model/not_checked.hpp"
 #include "sparse/product.hpp"
@@ -38,6 +39,14 @@ std::vector<Index> nodes_of(const std::optional<DofMap>& dofs, Index rows) {
     }
   }
   return nodes;
+}
+
+/// The user's seed and the first 64 bits of every input's digest.
+std::uint64_t mixed_seed(std::uint64_t seed, const std::vector<InputRecord>& inputs) {
+  for (const InputRecord& input : inputs) {
+    seed = CounterRandom::combine(seed, std::strtoull(input.sha256.substr(0, 16).c_str(), nullptr, 16));
+  }
+  return seed;
 }
 
 std::string mebibytes(Offset bytes) { return std::to_string((bytes + (1 << 20) - 1) >> 20) + " MiB"; }
@@ -104,6 +113,9 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   if (!scale.ok()) return scale.status();
   pencil.scale_ = std::move(*scale);
   pencil.resolution_ = request.resolution;
+  pencil.memory_cap_ = request.memory_cap_bytes;
+  pencil.risk_ = std::make_shared<RiskBudget>(request.risk);
+  pencil.seed_ = mixed_seed(request.seed, outcome.inputs);
   pencil.factor_options_.progress = context.progress;
   pencil.factor_options_.cancel = context.cancel;
 
@@ -121,6 +133,12 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   return pencil;
 }
 
+/// What keeping the factor may take: the cap, or most of what the machine has left, less what is in use.
+Offset PreparedPencil::bytes_for_factor() const {
+  const Offset most = memory_cap_ ? *memory_cap_ : total_memory_bytes() / 10 * 8;
+  return most - resident_bytes();
+}
+
 ShiftedMatrix PreparedPencil::combination(double factor) const {
   ShiftedMatrix matrix{&family_, {1.0}, &scale_, 0};
   matrix.coefficients.insert(matrix.coefficients.end(), added_factors_.begin(), added_factors_.end());
@@ -130,9 +148,12 @@ ShiftedMatrix PreparedPencil::combination(double factor) const {
 
 Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                              Outcome& outcome) {
-  auto certified = certify_by_offsets(analysis_, matrix, options, pool);
+  CertifyOptions certify_options{options, risk_.get(), seed_, bytes_for_factor()};
+  auto certified = certify_inertia(analysis_, matrix, certify_options, pool);
   if (!certified.ok()) return certified.status();
+  outcome.risk = risk_->spent();
   outcome.timings.factor += certified->seconds;
+  outcome.timings.certify += certified->certify_seconds;
   outcome.work.factorizations += certified->factorizations;
   outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified->delayed_pivots);
   outcome.work.two_by_two_pivots = std::max(outcome.work.two_by_two_pivots, certified->two_by_two_pivots);

@@ -7,7 +7,7 @@
 
 #include "base/threads.hpp"
 #include "engine/model_input.hpp"
-#include "inertia/two_offsets.hpp"
+#include "inertia/certify.hpp"
 #include "model/question.hpp"
 #include "sparse/matrix_family.hpp"
 #include "symbolic/analysis.hpp"
@@ -40,6 +40,7 @@ class PreparedPencil {
   ShiftedMatrix combination(double factor) const;
   Result<CertifiedInertia> run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                Outcome& outcome);
+  Offset bytes_for_factor() const;
 
   Analysis analysis_;
   MatrixFamily family_;
@@ -47,7 +48,10 @@ class PreparedPencil {
   std::vector<double> added_factors_;
   bool has_second_ = false;
   std::optional<double> resolution_;
+  std::optional<Offset> memory_cap_;
   FactorOptions factor_options_;
+  std::shared_ptr<RiskBudget> risk_;  ///< of the document
+  std::uint64_t seed_ = 1;            ///< the user's, mixed with the digests of the inputs
 };
 
 /// Threads asked for, or all available.

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "extended/factorize.hpp"
 #include "sparse/product.hpp"
 
 namespace stanchion {
@@ -10,6 +11,7 @@ namespace {
 
 /// First guesses of c over ||A_s||_inf: a few times the bounds usually seen, so that one factorization is enough.
 constexpr double kDefiniteGuess = 0x1p-40, kGeneralGuess = 0x1p-36;
+constexpr double kExtendedDefiniteGuess = 0x1p-88, kExtendedGeneralGuess = 0x1p-84;
 /// A retry takes this many times the bound just reported: a changed offset moves the bound a little.
 constexpr double kMargin = 2.0;
 /// A resolution this many times its bounds is worth sharpening when zeros were left.
@@ -25,18 +27,21 @@ class OffsetScheme {
     const double norm = infinity_norm(matrix_);
     Certificate& certificate = found_.certificate;
     certificate.method = "offsets";
-    certificate.precision = "double";
+    certificate.precision = options_.extended ? "extended" : "double";
     if (rows_ == 0) {
       certificate.level = Level::kProved;
       return found_;
     }
-    double offset = options_.resolution.value_or(std::max(norm, 0x1p-500) *
-                                                 (options_.definite_first ? kDefiniteGuess : kGeneralGuess));
+    double offset = options_.resolution.value_or(std::max(norm, 0x1p-500) * first_guess());
     if (!options_.resolution) offset = std::max(offset, kMargin * options_.data_error);
     if (options_.definite_first) {
       auto settled = try_definite(offset);
       if (!settled.ok()) return settled.status();
       if (*settled) return found_;
+      if (options_.definite_only) {
+        give_up("the attempt without pivoting did not show the matrix definite");
+        return found_;
+      }
     }
     return both_offsets(offset);
   }
@@ -48,13 +53,19 @@ class OffsetScheme {
     Index negative = 0;
   };
 
+  double first_guess() const {
+    if (options_.extended) return options_.definite_first ? kExtendedDefiniteGuess : kExtendedGeneralGuess;
+    return options_.definite_first ? kDefiniteGuess : kGeneralGuess;
+  }
+
   /// One factorization of A_s - offset I; its bound includes the data's own error.
   Result<Run> factor(double offset, bool definite) {
     ShiftedMatrix shifted = matrix_;
     shifted.offset = offset;
     FactorOptions factor_options = options_.factor;
     factor_options.definite = definite;
-    auto result = factorize(analysis_, shifted, factor_options, pool_);
+    auto result = options_.extended ? factorize_extended(analysis_, shifted, factor_options, pool_)
+                                    : factorize(analysis_, shifted, factor_options, pool_);
     if (!result.ok()) return result.status();
     ++found_.factorizations;
     found_.delayed_pivots = std::max(found_.delayed_pivots, result->delayed_pivots);

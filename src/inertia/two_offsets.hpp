@@ -11,7 +11,9 @@ namespace stanchion {
 
 struct OffsetOptions {
   bool definite_first = false;       ///< expect a positive definite matrix: try without pivoting, stop early
+  bool definite_only = false;        ///< with definite_first: give up (level none) when that attempt fails
   std::optional<double> resolution;  ///< the offset c itself; absent: chosen, retried larger or smaller
+  bool extended = false;             ///< factor in double-double: slow, for what double cannot tell apart
   double data_error = 0;             ///< bound on the 2-norm of what the scaled entries themselves may be off
   FactorOptions factor;              ///< threshold, cap, progress, cancellation; `definite` is set here
 };
@@ -23,7 +25,8 @@ struct CertifiedInertia {
   std::string unresolved_because;  ///< empty when certificate.level is proved
   Index factorizations = 0;
   Offset delayed_pivots = 0, two_by_two_pivots = 0, peak_bytes = 0;
-  double seconds = 0;
+  double seconds = 0;          ///< of the factorizations
+  double certify_seconds = 0;  ///< beyond them
 };
 
 /// Counts at both offsets and what follows: with bounds eta-, eta+ on the two backward errors and c above both,
@@ -31,7 +34,7 @@ struct CertifiedInertia {
 /// k - m between are zero at the resolution c (of either sign). k = 0 proves positive definiteness from one
 /// factorization, with lambda_min(A_s) >= c - eta-. Derivation: error_bound.md. The offset of `matrix` is ignored.
 /// Without `resolution` c follows the bounds, so that an answer exists unless the factorization breaks down; the
-/// zeros then say what double precision could not tell apart. Level: proved, or none with the reason.
+/// zeros then say what the precision used could not tell apart. Level: proved, or none with the reason.
 /// Errors: those of factorize(); internal when the counts contradict the bounds (a fault of machine or program).
 /// Cost: one factorization in the good definite case, otherwise two to six.
 Result<CertifiedInertia> certify_by_offsets(const Analysis& analysis, const ShiftedMatrix& matrix,

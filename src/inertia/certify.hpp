@@ -1,0 +1,23 @@
+// The certified inertia of one matrix by whichever method is forecast cheaper, escalating when one cannot tell.
+#pragma once
+
+#include "inertia/relative.hpp"
+#include "inertia/two_offsets.hpp"
+
+namespace stanchion {
+
+struct CertifyOptions {
+  OffsetOptions offsets;            ///< resolution or data error given: offsets only
+  RiskBudget* risk = nullptr;       ///< of the document; null: no statistical statement is allowed
+  std::uint64_t seed = 1;
+  Offset most_factor_bytes = 0;     ///< memory that keeping a factor may take
+};
+
+/// Definite expected: one factorization with an offset, without pivoting, is the cheapest proof. Otherwise, and when
+/// that fails, the relative test (one factorization, kept) where memory and risk allow; then the two offsets, which
+/// also answer for singular matrices, at a resolution. Whatever is certified first is returned. Errors: those of the
+/// methods.
+Result<CertifiedInertia> certify_inertia(const Analysis& analysis, const ShiftedMatrix& matrix,
+                                         const CertifyOptions& options, ThreadPool& pool);
+
+}  // namespace stanchion

@@ -1,0 +1,40 @@
+// Loops over blocks of eight vectors at once, compiled once per instruction set: triangular solves read the factor
+// once for all eight, and the extended product of the data forms each coefficient once.
+#pragma once
+
+#include "stanchion/types.hpp"
+
+namespace stanchion {
+
+/// Vectors worked on together. A block of n rows is stored row by row: kBlockVectors doubles a row.
+constexpr Index kBlockVectors = 8;
+
+/// Rows of the data's lower triangle, as the extended product needs them.
+struct DataColumns {
+  const Offset* column_start;
+  const Index* row;
+  const double* const* values;   ///< one array per member
+  const double* coefficients;    ///< one per member
+  Index members;
+};
+
+struct BlockKernels {
+  /// y_i += sum_(k < columns) l_ik x_k for `rows` rows; columns <= 64. The sum is formed apart and added once.
+  void (*panel_times_block)(const double* lower, Index leading, Index rows, Index columns, const double* x, double* y);
+
+  /// out_k += sum_(i < rows) l_ik x_i for `columns` columns; rows <= 512. Each sum is formed apart, added once.
+  void (*panel_transposed_times_block)(const double* lower, Index leading, Index rows, Index columns, const double* x,
+                                       double* out);
+
+  /// (high + low) += A y over columns [begin, end) of the lower triangle, both triangles, in double-double: every
+  /// coefficient sum_t c_t v_t, every product and every addition carries a relative error of at most 8 2^-106.
+  void (*extended_product)(const DataColumns& data, Index begin, Index end, const double* y, double* high, double* low);
+};
+
+/// The best set this processor can run.
+const BlockKernels& block_kernels();
+
+/// The plain reference set.
+const BlockKernels& reference_block_kernels();
+
+}  // namespace stanchion
