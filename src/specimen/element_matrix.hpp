@@ -12,8 +12,8 @@ template <int n>
 struct ElementMatrix {
   std::array<double, static_cast<std::size_t>(n) * n> entry{};
 
-  double& operator()(int i, int j) { return entry[static_cast<std::size_t>(i * n + j)]; }
-  double operator()(int i, int j) const { return entry[static_cast<std::size_t>(i * n + j)]; }
+  double& operator()(int i, int j) { return entry[std::size_t(i) * n + std::size_t(j)]; }
+  double operator()(int i, int j) const { return entry[std::size_t(i) * n + std::size_t(j)]; }
 };
 
 template <int rows, int columns>

@@ -130,7 +130,7 @@ class BridgeBuilder {
 
 /// The cross beam at midspan of the first span gets its own nodes.
 std::vector<Index> cut_cross_beam_off(Model& model, const BridgeMesh& mesh) {
-  const double middle = mesh.panels / 2 * kPanel;
+  const double middle = mesh.panels * kPanel / 2;
   return detach(model, [&](const Part& part, Offset e) {
     const Point& a = model.table.place(part.element(e)[0]);
     const Point& b = model.table.place(part.element(e)[1]);
