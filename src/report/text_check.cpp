@@ -86,9 +86,9 @@ std::string consequence(const CheckOutcome& check) {
   }
   switch (check.verdict) {
     case Verdict::kPositiveSemidefinite:
-      return "Along a zero direction the structure moves without resistance: a missing support, a mechanism "
-             "or a "
-             "degree of freedom that nothing holds.";
+      return "Along a zero direction the structure moves with no resistance that the resolution can see: a "
+             "missing support, a mechanism, a part that nothing holds, or a motion too soft for these "
+             "numbers.";
     case Verdict::kIndefinite:
       return "Along a negative direction the structure gives way by itself: it is past a critical state, or "
              "the "

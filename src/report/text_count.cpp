@@ -14,7 +14,10 @@ std::string count_in_words(const ShiftCount& count) {
   return fmt::format("{} to {}", grouped(count.below_range.first), grouped(count.below_range.second));
 }
 
-std::string backing(const ShiftCount& count) {
+std::string backing(const ShiftCount& count, Index rows_counted) {
+  const Index spread = count.below_range.second - count.below_range.first;
+  if (count.level == Level::kNone && spread < rows_counted)
+    return "only the range; no certificate for one number";
   std::string text;
   if (count.level == Level::kStatistical && count.failure_probability) {
     text = "statistics, wrong with probability at most " + rounded(*count.failure_probability);
@@ -65,7 +68,7 @@ std::string headline(const std::vector<ShiftCount>& counts) {
 }
 
 /// Shift, count, margin (if any has one), backing, and what is counted (if that differs).
-std::vector<std::vector<std::string>> rows_of(const std::vector<ShiftCount>& counts) {
+std::vector<std::vector<std::string>> rows_of(const std::vector<ShiftCount>& counts, Index rows_counted) {
   const bool margins = any_margin(counts), meanings = !same_meaning(counts);
   const auto row = [&](std::string shift, std::string count, std::string margin, std::string backing,
                        std::string meaning) {
@@ -77,8 +80,8 @@ std::vector<std::vector<std::string>> rows_of(const std::vector<ShiftCount>& cou
   };
   std::vector<std::vector<std::string>> rows{row("shift", "count", "margin", "backed by", "counted")};
   for (const ShiftCount& count : counts) {
-    rows.push_back(
-        row(exact(count.shift), count_in_words(count), margin(count), backing(count), count.meaning));
+    rows.push_back(row(exact(count.shift), count_in_words(count), margin(count), backing(count, rows_counted),
+                       count.meaning));
   }
   return rows;
 }
@@ -94,7 +97,7 @@ void write_count(Page& page, const Outcome& outcome) {
   page.sentence(headline(answer.counts));
   for (const std::string& sentence : answer.sentences) page.sentence(sentence);
   page.blank();
-  page.table(rows_of(answer.counts), any_margin(answer.counts) ? 3 : 2);
+  page.table(rows_of(answer.counts, outcome.rows_analysed), any_margin(answer.counts) ? 3 : 2);
   if (any_margin(answer.counts)) {
     page.sentence("A count is exact unless one of what is counted lies within the margin of its shift.");
   }

@@ -76,8 +76,15 @@ TEST(Text, CountsAreATable) {
   const std::string text = to_text(samples::counted());
   EXPECT_NE(text.find("  shift  count  margin  backed by\n"), std::string::npos);
   EXPECT_NE(text.find("  -2.25      3   1e-09  proof, from factors on both sides\n"), std::string::npos);
-  EXPECT_TRUE(says(samples::counted_in_part(), "2 to 4       -  nothing: no certificate"));
+  EXPECT_TRUE(
+      says(samples::counted_in_part(), "2 to 4       -  only the range; no certificate for one number"));
   EXPECT_TRUE(says(samples::counted(), "definite at every f in [0, 1.5]"));
+}
+
+TEST(Text, ACountWithoutAnyCertificateSaysSo) {
+  Outcome outcome = samples::counted_in_part();
+  outcome.count->counts[1].below_range = {0, outcome.rows_analysed};
+  EXPECT_TRUE(says(outcome, "0 to 29,796       -  nothing: no certificate\n"));
 }
 
 TEST(Text, StatisticalCountsSayHowSureTheyAre) {
