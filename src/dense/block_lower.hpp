@@ -56,8 +56,8 @@ inline BlockLayout contribution_layout(Index order) {
   return {order, std::clamp<Index>((order / 8 + 15) / 16 * 16, 16, kFrontBlock)};
 }
 
-/// Doubles of a waiting contribution block: its entries, its row bounds and its row sums.
-inline Offset contribution_doubles(Index order) { return contribution_layout(order).size() + 2 * Offset{order}; }
+/// Doubles of a waiting contribution block: its entries, its row bounds, its row sums, its images and their bounds.
+inline Offset contribution_doubles(Index order) { return contribution_layout(order).size() + 4 * Offset{order}; }
 
 /// A block-lower matrix: layout and storage (not owned).
 struct BlockLower {

@@ -11,6 +11,8 @@ namespace {
 
 constexpr Index kTileRows = 256;  ///< rows below the tile handled as one piece
 constexpr double kUnit = 0x1p-53;
+// Parts of the sums over columns of a tile: of |L|, of |A21|, of L with the signs of the fault vector.
+constexpr Index kSizes = 0, kOperand = kTileWidth, kSigned = 2 * kTileWidth, kSums = 3 * kTileWidth;
 
 /// One column block of the front while its pivots are taken.
 struct Panel {
@@ -22,12 +24,18 @@ struct Panel {
 class FrontEliminator {
  public:
   FrontEliminator(const Front& front, const EliminationOptions& options, EliminationScratch& scratch, ThreadPool* team)
-      : front_(front), layout_(front.matrix.layout), options_(options), scratch_(scratch), team_(team) {
+      : front_(front), layout_(front_.matrix.layout), options_(options), scratch_(scratch), team_(team) {
+    if (front.fault.sign == nullptr) {
+      const auto order = static_cast<std::size_t>(layout_.order);
+      std::vector<double>& zeros = scratch_.no_fault_vector;
+      zeros.assign(3 * order, 0);
+      front_.fault = {zeros.data(), zeros.data() + order, zeros.data() + 2 * order};
+    }
     const std::size_t tile = std::size_t{kTileWidth} * kTileWidth;
     scratch_.tile.resize(tile);
     scratch_.inverse.resize(tile);
     scratch_.permutation.resize(kTileWidth);
-    scratch_.sums.resize(std::size_t{kTileWidth} * 4);
+    scratch_.sums.resize(kSums);
     const Index widest = std::min(front.candidates, kFrontBlock);
     const Offset needed = Offset{layout_.padded} * widest;
     if (scratch_.scaled.size() < needed) scratch_.scaled = Buffer<double>(needed);
@@ -46,6 +54,7 @@ class FrontEliminator {
       limit = set_aside_failed(done, panel_end, limit);
     }
     result_.additions = panels_ + most_tiles_;
+    result_.image_additions += std::min(front_.candidates, kTileWidth);  // in the row's own tile
     result_.eliminated = done;
     if (done < front_.candidates) {
       result_.eliminated = eliminate_by_search(front_, done, options_, scratch_, team_, result_);
@@ -143,7 +152,7 @@ class FrontEliminator {
   Index multiply_and_accept(const Panel& panel, Index below, Index found) {
     const Index at = panel.next, pieces = pieces_below(below);
     auto& parts = scratch_.column_parts;
-    parts.resize(std::max<std::size_t>(parts.size(), static_cast<std::size_t>(pieces) * 2 * kTileWidth));
+    parts.resize(std::max<std::size_t>(parts.size(), static_cast<std::size_t>(pieces) * kSums));
     for_each_piece(team_, pieces, [&](Offset piece) {
       const Index row = below + static_cast<Index>(piece) * kTileRows;
       const Index rows = std::min(kTileRows, layout_.order - row);
@@ -165,24 +174,24 @@ class FrontEliminator {
     return found;
   }
 
-  /// Overwrites A21 by L = W D^-1 and adds up what the bounds need: column sums of |L| into sums[0..), of |A21|
-  /// (the operand that was multiplied) into sums[64..), and its weighted row sums into the row bounds.
+  /// Overwrites A21 by L = W D^-1 and adds up what the bounds need: column sums of |L| and of L with signs, of |A21|
+  /// (the operand that was multiplied), and its weighted row sums into the row bounds.
   void divide(const Panel& panel, Index below, Index accepted, const double* weight) {
     const Index at = panel.next, pieces = pieces_below(below);
     auto& parts = scratch_.column_parts;
-    std::fill_n(parts.begin(), static_cast<std::size_t>(pieces) * 2 * kTileWidth, 0.0);
+    std::fill_n(parts.begin(), static_cast<std::size_t>(pieces) * kSums, 0.0);
     for_each_piece(team_, pieces, [&](Offset piece) {
       const Index row = below + static_cast<Index>(piece) * kTileRows;
       const Index rows = std::min(kTileRows, layout_.order - row);
-      double* part = parts.data() + piece * 2 * kTileWidth;
+      double* part = parts.data() + piece * kSums;
       double* a = front_.matrix.column(row, at);
-      kernels().weighted_abs_sums(a, leading(panel), rows, accepted, weight, front_.row_error + row, part + kTileWidth);
+      kernels().weighted_abs_sums(a, leading(panel), rows, accepted, weight, front_.row_error + row, part + kOperand);
       kernels().divide_by_pivots(scaled(panel, row, at), leading_scaled(panel), a, leading(panel), rows, accepted,
-                                 pivots_at(at), part);
+                                 pivots_at(at), front_.fault.sign + row, part + kSizes, part + kSigned);
     });
     for (Index piece = 0; piece < pieces; ++piece) {
-      const double* part = parts.data() + Offset{piece} * 2 * kTileWidth;
-      for (Index k = 0; k < 2 * kTileWidth; ++k) scratch_.sums[static_cast<std::size_t>(k)] += part[k];
+      const double* part = parts.data() + Offset{piece} * kSums;
+      for (Index k = 0; k < kSums; ++k) scratch_.sums[static_cast<std::size_t>(k)] += part[k];
     }
   }
 
@@ -219,42 +228,60 @@ class FrontEliminator {
   /// Writes L11 into the front, and the W rows of the tile's columns that were not accepted.
   void store_tile(const Panel& panel, Index width, Index accepted) {
     const Index at = panel.next;
+    const double* sign = front_.fault.sign + at;
+    double* sums = scratch_.sums.data();
     for (Index k = 0; k < accepted; ++k) {
       const double* source = tile() + Offset{k} * kTileWidth;
       double* target = front_.matrix.column(at, at + k);
-      double sum = 1;
+      double size = 1, signed_sum = sign[k];
       for (Index i = k + 1; i < width; ++i) {
         target[i] = source[i];
-        sum += std::fabs(source[i]);
+        size += std::fabs(source[i]);
+        signed_sum += source[i] * sign[i];
       }
       target[k] = 1;
-      scratch_.sums[static_cast<std::size_t>(k)] += sum;
+      sums[kSizes + k] += size;
+      sums[kSigned + k] += signed_sum;
       for (Index i = accepted; i < width; ++i) *scaled(panel, at + i, at + k) = tile()[k + Offset{i} * kTileWidth];
     }
   }
 
-  /// growth += |L| |D| (|L|^T e) for the accepted columns.
-  void add_growth(const Panel& panel, Index width, Index accepted) {
+  /// growth += |L| |D| (|L|^T e) and image += L D (L^T x) for the accepted columns.
+  void add_growth_and_image(const Panel& panel, Index width, Index accepted) {
     const Index at = panel.next, below = at + width;
     const PivotArrays pivots = pivots_at(at);
-    double weight[kTileWidth];
-    const double* g = scratch_.sums.data();
+    double weight[kTileWidth], step[kTileWidth];
+    const double *g = scratch_.sums.data() + kSizes, *z = scratch_.sums.data() + kSigned;
     for (Index k = 0; k < accepted; ++k) {
       weight[k] = std::fabs(pivots.diagonal[k]) * g[k];
-      if (pivots.kind[k] == PivotKind::kTwoFirst) weight[k] += std::fabs(pivots.off_diagonal[k]) * g[k + 1];
-      if (pivots.kind[k] == PivotKind::kTwoSecond) weight[k] += std::fabs(pivots.off_diagonal[k - 1]) * g[k - 1];
+      step[k] = pivots.diagonal[k] * z[k];
+      if (pivots.kind[k] == PivotKind::kOne) continue;
+      const Index partner = pivots.kind[k] == PivotKind::kTwoFirst ? k + 1 : k - 1;
+      const double b = pivots.off_diagonal[std::min(k, partner)];
+      weight[k] += std::fabs(b) * g[partner];
+      step[k] += b * z[partner];
     }
+    double *growth = front_.growth + at, *image = front_.fault.image + at;
     for (Index k = 0; k < accepted; ++k) {
       const double* column = tile() + Offset{k} * kTileWidth;
-      front_.growth[at + k] += weight[k];
-      for (Index i = k + 1; i < width; ++i) front_.growth[at + i] += std::fabs(column[i]) * weight[k];
+      growth[k] += weight[k];
+      image[k] += step[k];
+      for (Index i = k + 1; i < width; ++i) {
+        growth[i] += std::fabs(column[i]) * weight[k];
+        image[i] += column[i] * step[k];
+      }
     }
-    for_each_piece(team_, pieces_below(below), [&](Offset piece) {
+    const Index pieces = pieces_below(below);
+    for_each_piece(team_, pieces, [&](Offset piece) {
       const Index row = below + static_cast<Index>(piece) * kTileRows;
       const Index rows = std::min(kTileRows, layout_.order - row);
-      kernels().weighted_abs_sums(front_.matrix.column(row, at), leading(panel), rows, accepted, weight,
-                                  front_.growth + row, nullptr);
+      kernels().add_growth_and_image(front_.matrix.column(row, at), leading(panel), rows, accepted, weight, step,
+                                     front_.growth + row, front_.fault.image + row);
     });
+    result_.sign_sum_depth = std::max(
+        result_.sign_sum_depth, width + pieces + 1 + signed_sum_depth(std::min(kTileRows, layout_.order - below)));
+    // A row of the tile that stays gets its products one by one.
+    result_.image_additions += accepted < width ? accepted : image_additions(accepted);
   }
 
   /// Eliminates up to `width` columns at panel.next and updates the rest of the panel. Returns how many.
@@ -281,7 +308,7 @@ class FrontEliminator {
       add_column_errors(at, accepted, scratch_.sums.data() + kTileWidth);
     }
     store_tile(panel, width, accepted);
-    add_growth(panel, width, accepted);
+    add_growth_and_image(panel, width, accepted);
     for (Index k = 0; k < accepted; ++k) result_.two_by_two += front_.pivots.kind[at + k] == PivotKind::kTwoFirst;
     result_.longest_sum = std::max(result_.longest_sum, accepted);
     const Index rest = at + accepted;
@@ -312,7 +339,7 @@ class FrontEliminator {
     return limit - failed;
   }
 
-  const Front& front_;
+  Front front_;
   const BlockLayout& layout_;
   const EliminationOptions& options_;
   EliminationScratch& scratch_;
@@ -334,6 +361,8 @@ void swap_symmetric(const Front& front, Index i, Index j, Index first_kept_colum
   std::swap(front.label[i], front.label[j]);
   std::swap(front.row_error[i], front.row_error[j]);
   std::swap(front.growth[i], front.growth[j]);
+  if (front.fault.sign == nullptr) return;
+  for (double* values : {front.fault.sign, front.fault.image, front.fault.error}) std::swap(values[i], values[j]);
 }
 
 EliminationResult eliminate_front(const Front& front, const EliminationOptions& options, EliminationScratch& scratch,

@@ -16,6 +16,14 @@ struct EliminationOptions {
   bool keep_factor = false;  ///< the rows of L already computed follow later interchanges
 };
 
+/// The vector that detects faults: every pivot column l_k with its D adds its share of L D L^T x to the image of x.
+/// A machine that computes right leaves image = A x within the bounds (src/inertia/error_bound.md, section 9).
+struct FaultVector {
+  double* sign = nullptr;   ///< x, one entry +1 or -1 a row; null: no detection
+  double* image = nullptr;  ///< one per row; shares of L D L^T x are added
+  double* error = nullptr;  ///< one per row: bound on the rounding of `image`; the caller adds to it
+};
+
 /// A front: rows [0, candidates) may be eliminated, the rest only updated. Nothing is owned.
 struct Front {
   BlockLower matrix;      ///< in: assembled lower triangle; out: L below eliminated pivots, Schur complement after
@@ -24,6 +32,7 @@ struct Front {
   Index* label = nullptr;      ///< one per row, permuted along (callers put equation positions here)
   double* row_error = nullptr; ///< one per row, permuted along; bounds are added here. Never null.
   double* growth = nullptr;    ///< one per row, zero on entry: gets row sums of |L||D||L^T|. Never null.
+  FaultVector fault{};         ///< permuted along
 };
 
 struct EliminationResult {
@@ -33,12 +42,15 @@ struct EliminationResult {
   Offset two_by_two = 0;
   Index longest_sum = 0;        ///< most products added up in one call
   Index additions = 0;          ///< most such sums added to one entry
+  Index sign_sum_depth = 0;     ///< longest path of additions to an entry of L^T x
+  Index image_additions = 0;    ///< most additions to an entry of the image
 };
 
 /// Scratch of one worker, grown on demand and reused from front to front.
 struct EliminationScratch {
   Buffer<double> scaled;                ///< W = L D of the current column block
   std::vector<double> tile, inverse, column_parts, sums;
+  std::vector<double> no_fault_vector;  ///< zeros for a front without one
   std::vector<Index> permutation;
 };
 

@@ -116,16 +116,18 @@ class SearchEliminator {
     front_.pivots.diagonal[k] = pivot;
     front_.pivots.off_diagonal[k] = 0;
     front_.pivots.kind[k] = PivotKind::kOne;
-    double sum = 1;
+    double size = 1, signed_sum = front_.fault.sign[k];
     for (Index i = k + 1; i < order(); ++i) {
       scaled(i, k) = column[i];
       column[i] *= inverse;
-      sum += std::fabs(column[i]);
+      size += std::fabs(column[i]);
+      signed_sum += column[i] * front_.fault.sign[i];
     }
     column[k] = 1;
-    const double weight = std::fabs(pivot) * sum;
-    front_.growth[k] += weight;
-    for (Index i = k + 1; i < order(); ++i) front_.growth[i] += std::fabs(column[i]) * weight;
+    const double weight = std::fabs(pivot) * size, step = pivot * signed_sum;
+    kernels().add_growth_and_image(column + k, leading_scaled(), order() - k, 1, &weight, &step, front_.growth + k,
+                                   front_.fault.image + k);
+    note_image(order() - k);
     ++next_;
     update_candidates(k, 1);
   }
@@ -149,25 +151,34 @@ class SearchEliminator {
       scaled(i, k) = first[i];
       scaled(i, k + 1) = second[i];
     }
-    double sums[2] = {1, 1};
+    double sums[2] = {1, 1}, z[2] = {front_.fault.sign[k], front_.fault.sign[k + 1]};
     if (rows > 0) {
       std::vector<double> pair(static_cast<std::size_t>(rows) * 2);
-      kernels().divide_by_pivots(&scaled(below, k), leading_scaled(), pair.data(), rows, rows, 2, pivots, sums);
+      kernels().divide_by_pivots(&scaled(below, k), leading_scaled(), pair.data(), rows, rows, 2, pivots,
+                                 front_.fault.sign + below, sums, z);
       std::copy_n(pair.begin(), rows, first + below);
       std::copy_n(pair.begin() + rows, rows, second + below);
     }
     first[k] = second[k + 1] = 1;
     first[k + 1] = 0;
-    const double weight_first = std::fabs(a) * sums[0] + std::fabs(b) * sums[1];
-    const double weight_second = std::fabs(b) * sums[0] + std::fabs(c) * sums[1];
-    front_.growth[k] += weight_first;
-    front_.growth[k + 1] += weight_second;
-    for (Index i = below; i < order(); ++i) {
-      front_.growth[i] += std::fabs(first[i]) * weight_first + std::fabs(second[i]) * weight_second;
+    const double weight[2] = {std::fabs(a) * sums[0] + std::fabs(b) * sums[1],
+                              std::fabs(b) * sums[0] + std::fabs(c) * sums[1]};
+    const double step[2] = {a * z[0] + b * z[1], b * z[0] + c * z[1]};
+    const double* column[2] = {first, second};
+    for (Index p = 0; p < 2; ++p) {
+      kernels().add_growth_and_image(column[p] + k + p, leading_scaled(), order() - k - p, 1, weight + p, step + p,
+                                     front_.growth + k + p, front_.fault.image + k + p);
+      note_image(signed_sum_depth(rows));
     }
     next_ += 2;
     ++result_.two_by_two;
     update_candidates(k, 2);
+  }
+
+  /// One more pivot in the image, whose entry of L^T x took `depth` additions.
+  void note_image(Index depth) {
+    result_.sign_sum_depth = std::max(result_.sign_sum_depth, depth);
+    ++result_.image_additions;
   }
 
   /// Takes `count` new pivots out of the candidate columns only; the rest follows in one product (flush).

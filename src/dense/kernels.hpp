@@ -50,18 +50,30 @@ struct Kernels {
   /// out[k] = max_i |w_ik|; a NaN anywhere makes it infinite.
   void (*column_abs_max)(const double* w, Index leading, Index rows, Index columns, double* out);
 
-  /// l = w D^-1 row by row, and abs_sum[k] += sum_i |l_ik|. `l` and `w` may not overlap.
+  /// l = w D^-1 row by row; abs_sum[k] += sum_i |l_ik| and signed_sum[k] += sum_i l_ik sign_i, the latter through
+  /// at most signed_sum_depth(rows) additions one after the other. `l` and `w` may not overlap.
   void (*divide_by_pivots)(const double* w, Index leading_w, double* l, Index leading_l, Index rows, Index columns,
-                           PivotArrays pivots, double* abs_sum);
+                           PivotArrays pivots, const double* sign, double* abs_sum, double* signed_sum);
 
   /// row_sum[i] += sum_k |a_ik| weight[k]; when column_sum is not null also column_sum[k] += sum_i |a_ik|.
   void (*weighted_abs_sums)(const double* a, Index leading, Index rows, Index columns, const double* weight,
                             double* row_sum, double* column_sum);
 
+  /// growth[i] += sum_k |a_ik| weight[k] and image[i] += sum_k a_ik step[k], the latter in image_additions(columns)
+  /// additions of sums of at most four products.
+  void (*add_growth_and_image)(const double* a, Index leading, Index rows, Index columns, const double* weight,
+                               const double* step, double* growth, double* image);
+
   /// Copies `count` entries forward (destination may lie below source and overlap it), adds |entry| to row_sum
   /// and returns the sum of |entry|.
   double (*copy_with_abs_sums)(const double* source, Index count, double* destination, double* row_sum);
 };
+
+/// Longest path of additions through a signed column sum of divide_by_pivots.
+constexpr Index signed_sum_depth(Index rows) { return rows / 8 + 11; }
+
+/// Additions to one row by add_growth_and_image.
+constexpr Index image_additions(Index columns) { return columns / 4 + columns % 4; }
 
 /// The best set this processor can run. Thread safe.
 const Kernels& kernels();

@@ -1,6 +1,7 @@
 // The numeric phase: all pivots of a shifted matrix, and what they prove.
 #pragma once
 
+#include <cstdint>
 #include <optional>
 #include <vector>
 
@@ -20,6 +21,7 @@ struct FactorOptions {
   std::optional<Offset> memory_cap_bytes;  ///< of the numeric phase
   ProgressCallback progress;
   const CancellationToken* cancel = nullptr;
+  std::uint64_t seed = 1;  ///< of the signs that detect faults; the factors do not depend on it
 };
 
 /// One eliminated front: L (order x pivots, column-major, unit lower trapezoid), D, and the equations by position.
@@ -45,6 +47,8 @@ struct PivotSigns {
 struct Factorization {
   bool stopped = false;     ///< definite attempt met a pivot that is not positive; counts are not valid
   bool breakdown = false;   ///< overflow or pivots too small to divide by; counts are not valid
+  bool fault = false;       ///< the machine, its memory or its BLAS computed wrongly; nothing is valid
+  Index fault_row = -1;     ///< the first row, in elimination order, that differs from A x by more than its bound
   PivotSigns signs;
   std::vector<PivotSigns> component_signs;  ///< per connected part
   double error_bound = 0;   ///< proved: ||E||_2, forming of the matrix included

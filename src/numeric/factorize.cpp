@@ -28,6 +28,8 @@ class Factorizer {
   Result<Factorization> run() {
     Stopwatch watch;
     Factorization result;
+    run_.probe = draw_fault_probe(run_.matrix, run_.options.seed);
+    run_.book(run_.probe.bytes());
     if (run_.options.keep_factor) {
       result.factor.emplace();
       result.factor->rows = run_.analysis.tree.rows;
@@ -138,6 +140,7 @@ class Factorizer {
       if (!worker) continue;
       result.stopped = result.stopped || worker->stopped;
       result.breakdown = result.breakdown || worker->breakdown;
+      note_fault(result, worker->fault_row);
       result.delayed_pivots += worker->delayed_pivots;
       result.two_by_two_pivots += worker->two_by_two_pivots;
       if (!(worker->largest_row_error <= result.error_bound)) result.error_bound = worker->largest_row_error;
@@ -151,6 +154,12 @@ class Factorizer {
       }
     }
     workers_.clear();
+  }
+
+  static void note_fault(Factorization& result, Index row) {
+    if (row < 0) return;
+    result.fault_row = result.fault ? std::min(result.fault_row, row) : row;
+    result.fault = true;
   }
 
   FactorRun run_;

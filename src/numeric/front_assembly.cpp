@@ -86,6 +86,8 @@ void FrontWorker::add_contribution(const Contribution& child, const BlockLower& 
     row_error_[to] += child.row_error[i];
     addend_sums_[to] += child.row_sums[i];
     ++addends_[to];
+    image_[to] += child.image[i];
+    image_error_[to] += child.image_error[i] + kUnit * std::fabs(image_[to]);
   }
   const Index pieces = (child.order + kScatterColumns - 1) / kScatterColumns;
   for_each_piece(team, pieces, [&](Offset piece) {
@@ -100,6 +102,10 @@ Status FrontWorker::assemble(const FrontRows& rows, const BlockLower& matrix, Th
   growth_.assign(order, 0);
   addend_sums_.assign(order, 0);
   addends_.assign(order, 0);
+  image_.assign(order, 0);
+  image_error_.assign(order, 0);
+  sign_.resize(order);
+  for (std::size_t i = 0; i < order; ++i) sign_[i] = run_.probe.sign[label_[i]];
   const BlockLayout& layout = matrix.layout;
   for_each_piece(team, layout.blocks(), [&](Offset block) {
     const auto b = static_cast<Index>(block);

@@ -13,6 +13,8 @@ namespace {
 constexpr double kUnit = 0x1p-53;
 /// Covers the divisions by pivots (2 u for 1x1, 16 u for 2x2, both sides) and the roundings of the sums themselves.
 constexpr Index kPivotRoundings = 40;
+/// Roundings of an image besides additions: D z (3), L times that (1), three additions of four products, a unit more.
+constexpr Index kImageRoundings = 8;
 
 Status memory_limit(Offset reached) {
   return Status::resource_limit(
@@ -44,6 +46,14 @@ void copy_columns(const BlockLower& from, Index first, const BlockLower& to, std
 }
 
 }  // namespace
+
+void Contribution::place(double* doubles) {
+  values = doubles;
+  row_error = doubles + contribution_layout(order).size();
+  row_sums = row_error + order;
+  image = row_sums + order;
+  image_error = image + order;
+}
 
 bool FactorRun::book(Offset change) {
   const Offset now = bytes.fetch_add(change) + change;
@@ -95,8 +105,9 @@ Status FrontWorker::process(Index front, ThreadPool* team) {
   diagonal_.resize(candidates);
   off_diagonal_.resize(candidates);
   kind_.resize(candidates);
-  const Front work{matrix,        rows.candidates,    {diagonal_.data(), off_diagonal_.data(), kind_.data()},
-                   label_.data(), row_error_.data(), growth_.data()};
+  const Front work{matrix,        rows.candidates,   {diagonal_.data(), off_diagonal_.data(), kind_.data()},
+                   label_.data(), row_error_.data(), growth_.data(),
+                   {sign_.data(), image_.data(), image_error_.data()}};
   const EliminationOptions options{run_.options.definite, run_.options.pivot_threshold, run_.factor != nullptr};
   const EliminationResult result = eliminate_front(work, options, scratch_, team);
   if (Status booked = book_arena(); !booked.ok()) return booked;
@@ -109,7 +120,8 @@ Status FrontWorker::process(Index front, ThreadPool* team) {
   }
   const double gamma = kUnit * static_cast<double>(result.longest_sum + result.additions +
                                                    std::min(rows.candidates, kTileWidth) + kPivotRoundings);
-  count_pivots(rows, result.eliminated, gamma);
+  bound_images(rows, result);
+  count_pivots(rows, result, gamma);
   two_by_two_pivots += result.two_by_two;
   delayed_pivots += rows.candidates - result.eliminated;
   if (run_.factor != nullptr) keep_panel(rows, matrix, result.eliminated);
@@ -117,7 +129,33 @@ Status FrontWorker::process(Index front, ThreadPool* team) {
   return {};
 }
 
-void FrontWorker::count_pivots(const FrontRows& rows, Index eliminated, double gamma) {
+/// With p additions to an entry of the image and sums of depth q in L^T x the front adds at most
+/// p u (|image| + 2 growth) + (q + kImageRoundings) u growth.
+void FrontWorker::bound_images(const FrontRows& rows, const EliminationResult& result) {
+  const double of_image = kUnit * result.image_additions;
+  const double of_growth = 2 * of_image + kUnit * (result.sign_sum_depth + kImageRoundings);
+  for (Index k = 0; k < rows.order; ++k) {
+    const auto i = static_cast<std::size_t>(k);
+    image_error_[i] += of_image * std::fabs(image_[i]) + of_growth * growth_[i];
+  }
+}
+
+/// Row `row` of the front is a pivot: its image is complete and may differ from A x by `bound` and the roundings.
+void FrontWorker::check_image(Index row, double bound) {
+  const auto i = static_cast<std::size_t>(row);
+  const Index position = label_[i];
+  const double allowed = 1.001 * (bound + image_error_[i] + run_.probe.product_error[position]);
+  if (!std::isfinite(allowed)) {
+    // Nothing can be told from an image that overflowed.
+    breakdown = true;
+    run_.abandon = true;
+  } else if (!(std::fabs(run_.probe.product[position] - image_[i]) <= allowed)) {
+    fault_row = fault_row < 0 ? position : std::min(fault_row, position);
+  }
+}
+
+void FrontWorker::count_pivots(const FrontRows& rows, const EliminationResult& result, double gamma) {
+  const Index eliminated = result.eliminated;
   const SignCount count = sign_of_pivots({diagonal_.data(), off_diagonal_.data(), kind_.data()}, eliminated);
   PivotSigns& total = signs[static_cast<std::size_t>(run_.analysis.tree.component[rows.front])];
   total.negative += count.negative;
@@ -134,6 +172,7 @@ void FrontWorker::count_pivots(const FrontRows& rows, Index eliminated, double g
     const double bound = row_error_[i] + gamma * growth_[i] + tiny;
     // A NaN must not pass for a small number.
     if (!(bound <= largest_row_error)) largest_row_error = bound;
+    check_image(k, bound);
   }
 }
 
@@ -179,15 +218,15 @@ void FrontWorker::pack(const FrontRows& rows, const BlockLower& matrix, const El
     copy_columns(matrix, eliminated, {layout, aside.data()}, sums);
     std::memcpy(destination, aside.data(), static_cast<std::size_t>(layout.size()) * sizeof(double));
   }
-  out.values = arena_.push(contribution_doubles(order));
-  out.row_error = out.values + layout.size();
-  out.row_sums = out.row_error + order;
+  out.place(arena_.push(contribution_doubles(order)));
   const double gamma_sum = kUnit * static_cast<double>(result.additions + 2);
   for (Index i = 0; i < order; ++i) {
     const auto from = static_cast<std::size_t>(eliminated + i);
     const double sum = sums[static_cast<std::size_t>(i)];
     out.row_error[i] = row_error_[from] + gamma * growth_[from] + gamma_sum * sum;
     out.row_sums[i] = sum;
+    out.image[i] = image_[from];
+    out.image_error[i] = image_error_[from];
   }
 }
 
@@ -198,10 +237,7 @@ Status FrontWorker::detach(Index front) {
   block.own = Buffer<double>(doubles);
   if (!run_.book(doubles * Offset{sizeof(double)})) return memory_limit(run_.bytes.load());
   std::memcpy(block.own.data(), block.values, static_cast<std::size_t>(doubles) * sizeof(double));
-  const Offset shift = block.row_error - block.values;
-  block.values = block.own.data();
-  block.row_error = block.values + shift;
-  block.row_sums = block.row_error + block.order;
+  block.place(block.own.data());
   arena_.pop_to(arena_.top() - arena_.used());
   return {};
 }

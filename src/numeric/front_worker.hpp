@@ -7,6 +7,7 @@
 #include "base/arena.hpp"
 #include "dense/eliminate.hpp"
 #include "numeric/factorization.hpp"
+#include "numeric/fault_probe.hpp"
 
 namespace stanchion {
 
@@ -15,9 +16,14 @@ struct Contribution {
   double* values = nullptr;     ///< contribution_layout(order)
   double* row_error = nullptr;  ///< bound on the row sums of the error so far
   double* row_sums = nullptr;   ///< row sums of |values|
+  double* image = nullptr;      ///< shares of L D L^T x from the pivots so far
+  double* image_error = nullptr;  ///< bound on the rounding of `image`
   Index order = 0;
   std::vector<Index> delayed;   ///< positions of the delayed columns
   Buffer<double> own;           ///< set when the block left its worker's stack
+
+  /// Points into `doubles`, contribution_doubles(order) of them.
+  void place(double* doubles);
 };
 
 /// State shared by the workers of one factorization.
@@ -31,6 +37,7 @@ struct FactorRun {
   std::atomic<Offset> bytes{0}, peak_bytes{0};
   std::atomic<double> flops_done{0};
   std::atomic<bool> abandon{false};          ///< a worker stopped, broke down, failed or was cancelled
+  FaultProbe probe{};
 
   /// Books `change` bytes; false when the cap would be passed.
   bool book(Offset change);
@@ -61,13 +68,16 @@ class FrontWorker {
   double largest_row_error = 0;
   Offset delayed_pivots = 0, two_by_two_pivots = 0;
   bool stopped = false, breakdown = false;
+  Index fault_row = -1;  ///< first in elimination order; negative: none
 
  private:
   FrontRows list_rows(Index front);
   Status assemble(const FrontRows& rows, const BlockLower& matrix, ThreadPool* team);
   void add_matrix_entries(const FrontRows& rows, const BlockLower& matrix);
   void add_contribution(const Contribution& child, const BlockLower& matrix, ThreadPool* team);
-  void count_pivots(const FrontRows& rows, Index eliminated, double gamma);
+  void count_pivots(const FrontRows& rows, const EliminationResult& result, double gamma);
+  void bound_images(const FrontRows& rows, const EliminationResult& result);
+  void check_image(Index row, double bound);
   void keep_panel(const FrontRows& rows, const BlockLower& matrix, Index eliminated);
   void pack(const FrontRows& rows, const BlockLower& matrix, const EliminationResult& result, double gamma,
             double* destination);
@@ -81,6 +91,7 @@ class FrontWorker {
   Buffer<Index> local_of_;               ///< position -> row of the current front
   std::vector<Index> label_;             ///< row of the current front -> position
   std::vector<double> row_error_, growth_, addend_sums_, diagonal_, off_diagonal_;
+  std::vector<double> sign_, image_, image_error_;
   std::vector<Index> addends_;           ///< contribution blocks that reach a row
   std::vector<PivotKind> kind_;
   std::vector<Index> map_;

@@ -96,11 +96,13 @@ void column_abs_max(benchmark::State& state, const Kernels& set) {
 void divide_by_pivots(benchmark::State& state, const Kernels& set) {
   const auto rows = static_cast<Index>(state.range(0));
   TileBench bench(kTileWidth, 0);
+  std::vector<double> sign(static_cast<std::size_t>(rows), 1.0), signed_sum(kTileWidth, 0.0);
   for (auto& d : bench.diagonal) d = 0.5;
   const auto w = random_values(static_cast<std::size_t>(rows) * kTileWidth);
   std::vector<double> l(w.size()), sum(kTileWidth);
   for (auto _ : state) {
-    set.divide_by_pivots(w.data(), rows, l.data(), rows, rows, kTileWidth, bench.pivots(), sum.data());
+    set.divide_by_pivots(w.data(), rows, l.data(), rows, rows, kTileWidth, bench.pivots(), sign.data(), sum.data(),
+                         signed_sum.data());
     benchmark::DoNotOptimize(l.data());
     benchmark::ClobberMemory();
   }

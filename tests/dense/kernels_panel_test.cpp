@@ -21,6 +21,12 @@ std::vector<double> random_values(Random& random, std::size_t count) {
   return values;
 }
 
+std::vector<double> random_signs(Random& random, Index count) {
+  std::vector<double> signs(static_cast<std::size_t>(count));
+  for (double& v : signs) v = test::uniform(random, -1, 1) < 0 ? -1 : 1;
+  return signs;
+}
+
 std::size_t place(Index i, Index k, Index leading) {
   return static_cast<std::size_t>(Offset{k} * leading + i);
 }
@@ -105,14 +111,18 @@ TEST(DivideByPivots, SolvesEveryRowAndSumsTheColumns) {
     const auto w = random_values(random, place(0, columns, leading));
     const Index leading_l = leading + 2;
     std::vector<double> l(place(0, columns, leading_l), kGuard), sum(static_cast<std::size_t>(columns), 10.0);
+    std::vector<double> signed_sum(static_cast<std::size_t>(columns), -3.0);
+    const auto sign = random_signs(random, rows);
     set.divide_by_pivots(w.data(), leading, l.data(), leading_l, rows, columns,
-                         {d.diagonal.data(), d.off_diagonal.data(), d.kind.data()}, sum.data());
+                         {d.diagonal.data(), d.off_diagonal.data(), d.kind.data()}, sign.data(), sum.data(),
+                         signed_sum.data());
     for (Index k = 0; k < columns; ++k) {
       const auto kk = static_cast<std::size_t>(k);
-      double expected_sum = 10;
+      double expected_sum = 10, expected_signed_sum = -3;
       for (Index i = 0; i < rows; ++i) {
         const double value = l[place(i, k, leading_l)];
         expected_sum += std::fabs(value);
+        expected_signed_sum += value * sign[static_cast<std::size_t>(i)];
         if (d.kind[kk] == PivotKind::kZero) {
           ASSERT_EQ(value, 0);
         } else if (d.kind[kk] == PivotKind::kOne) {
@@ -126,6 +136,7 @@ TEST(DivideByPivots, SolvesEveryRowAndSumsTheColumns) {
         }
       }
       ASSERT_NEAR(sum[kk], expected_sum, 1e-13 * expected_sum);
+      ASSERT_NEAR(signed_sum[kk], expected_signed_sum, 1e-13 * expected_sum);
       for (Index i = rows; i < leading_l; ++i) ASSERT_EQ(l[place(i, k, leading_l)], kGuard);
     }
   });
@@ -198,6 +209,31 @@ TEST(CopyWithAbsSums, CopiesForwardEvenOntoItself) {
   });
 }
 
+TEST(AddGrowthAndImage, EqualsThePlainLoopToRounding) {
+  Random random(128);
+  sweep([&](const Kernels& set, Index rows, Index columns, Index leading) {
+    const auto a = random_values(random, place(0, columns, leading));
+    const auto weight = random_values(random, static_cast<std::size_t>(columns));
+    const auto step = random_values(random, static_cast<std::size_t>(columns));
+    std::vector<double> growth(static_cast<std::size_t>(rows) + 1, kGuard), image(growth);
+    set.add_growth_and_image(a.data(), leading, rows, columns, weight.data(), step.data(), growth.data(), image.data());
+    for (Index i = 0; i < rows; ++i) {
+      double expected_growth = kGuard, expected_image = kGuard, size = std::fabs(kGuard);
+      for (Index k = 0; k < columns; ++k) {
+        const double value = a[place(i, k, leading)];
+        expected_growth += std::fabs(value) * weight[static_cast<std::size_t>(k)];
+        expected_image += value * step[static_cast<std::size_t>(k)];
+        size += std::fabs(value) * (std::fabs(weight[static_cast<std::size_t>(k)]) +
+                                    std::fabs(step[static_cast<std::size_t>(k)]));
+      }
+      ASSERT_NEAR(growth[static_cast<std::size_t>(i)], expected_growth, 1e-13 * size);
+      ASSERT_NEAR(image[static_cast<std::size_t>(i)], expected_image, 1e-13 * size);
+    }
+    ASSERT_EQ(growth.back(), kGuard);
+    ASSERT_EQ(image.back(), kGuard);
+  });
+}
+
 TEST(KernelSets, AgreeWithTheReferenceToRounding) {
   Random random(127);
   const Kernels* sets[3];
@@ -207,9 +243,10 @@ TEST(KernelSets, AgreeWithTheReferenceToRounding) {
     MixedPivots d(random, 8);
     std::vector<double> expected(w.size());
     for (int s = 0; s < count; ++s) {
-      std::vector<double> l(w.size()), sum(8, 0.0);
+      std::vector<double> l(w.size()), sum(8, 0.0), signed_sum(8, 0.0), sign(w.size(), 1.0);
       sets[s]->divide_by_pivots(w.data(), rows, l.data(), rows, rows, 8,
-                                {d.diagonal.data(), d.off_diagonal.data(), d.kind.data()}, sum.data());
+                                {d.diagonal.data(), d.off_diagonal.data(), d.kind.data()}, sign.data(), sum.data(),
+                                signed_sum.data());
       if (s == 0) expected = l;
       double largest = 0;
       for (const double v : expected) largest = std::max(largest, std::fabs(v));
