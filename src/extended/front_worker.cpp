@@ -1,0 +1,243 @@
+#include "extended/front_worker.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <cstring>
+
+namespace stanchion {
+namespace {
+
+constexpr double kMostThreshold =
+    0.35;  ///< above, a last front could be left with candidates that fit no pivot
+
+Status memory_limit(Offset reached) {
+  return Status::resource_limit("memory-cap",
+                                "the numeric phase needs more memory than allowed; it had reached " +
+                                    std::to_string(reached / (1024 * 1024)) + " MiB",
+                                "", "raise --memory-cap, or use fewer threads");
+}
+
+/// True when every column of every plane lands at or below the place it comes from and before what is still
+/// to be moved, so that the block can move over the children it has consumed without a copy aside.
+template <class Scalar>
+bool moves_down(const ScalarBlock<Scalar>& from, Index first, const ScalarBlock<Scalar>& to) {
+  const Index order = to.layout.order;
+  for (Index j = 0; j < order; ++j) {
+    const Strip<Scalar> source = from.column(first + j, first + j), target = to.column(j, j);
+    for (Index plane = 0; plane < ScalarTraits<Scalar>::planes; ++plane) {
+      if (target.data + plane * target.plane > source.data + plane * source.plane) return false;
+    }
+  }
+  // The first plane must end before the second begins to be read.
+  return ScalarTraits<Scalar>::planes == 1 ||
+         to.data + to.layout.size() <= from.column(first, first).data + from.layout.size();
+}
+
+/// Copies rows and columns from `first` on, adding up row sums of absolute values (both triangles).
+template <class Scalar>
+void copy_columns(const ScalarBlock<Scalar>& from, Index first, const ScalarBlock<Scalar>& to, double* sums) {
+  const Index order = to.layout.order;
+  for (Index plane = 0; plane < ScalarTraits<Scalar>::planes; ++plane) {
+    for (Index j = 0; j < order; ++j) {
+      const Strip<Scalar> source = from.column(first + j, first + j), target = to.column(j, j);
+      double* copied = target.data + plane * target.plane;
+      std::memmove(copied, source.data + plane * source.plane,
+                   static_cast<std::size_t>(order - j) * sizeof(double));
+      if (plane > 0) continue;
+      double column_sum = 0;
+      for (Index i = 1; i < order - j; ++i) {
+        const double size = std::fabs(copied[i]);
+        column_sum += size;
+        sums[j + i] += size;
+      }
+      sums[j] += std::fabs(copied[0]) + column_sum;
+    }
+  }
+}
+
+}  // namespace
+
+bool ScalarRun::book(Offset change) {
+  const Offset now = bytes.fetch_add(change) + change;
+  Offset seen = peak_bytes.load();
+  while (now > seen && !peak_bytes.compare_exchange_weak(seen, now)) {
+  }
+  return change <= 0 || !options.memory_cap_bytes || now <= *options.memory_cap_bytes;
+}
+
+template <class Scalar>
+ScalarWorker<Scalar>::ScalarWorker(ScalarRun& run, Offset arena_doubles)
+    : signs(static_cast<std::size_t>(run.analysis.tree.components)),
+      run_(run),
+      arena_(arena_doubles),
+      local_of_(run.analysis.tree.rows) {
+  run_.book(local_of_.size() * Offset{sizeof(Index)});
+}
+
+template <class Scalar>
+ScalarWorker<Scalar>::~ScalarWorker() {
+  run_.book(-(booked_doubles_ + booked_scratch_) * Offset{sizeof(double)} -
+            local_of_.size() * Offset{sizeof(Index)});
+}
+
+template <class Scalar>
+Status ScalarWorker<Scalar>::book_arena() {
+  const Offset change = arena_.high_water() - booked_doubles_,
+               scratch = scratch_.scaled.size() - booked_scratch_;
+  if (change == 0 && scratch == 0) return {};
+  booked_doubles_ += change;
+  booked_scratch_ += scratch;
+  return run_.book((change + scratch) * Offset{sizeof(double)}) ? Status{} : memory_limit(run_.bytes.load());
+}
+
+template <class Scalar>
+RowsOfFront ScalarWorker<Scalar>::list_rows(Index front) {
+  const AssemblyTree& tree = run_.analysis.tree;
+  RowsOfFront rows{front, tree.pivots(front), 0, 0};
+  label_.clear();
+  for (Index k = tree.first_column[front]; k < tree.first_column[Offset{front} + 1]; ++k) label_.push_back(k);
+  for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
+    const auto& delayed = run_.waiting[static_cast<std::size_t>(child)].delayed;
+    label_.insert(label_.end(), delayed.begin(), delayed.end());
+  }
+  rows.candidates = static_cast<Index>(label_.size());
+  label_.insert(label_.end(), tree.rows_below.begin() + tree.row_start[front],
+                tree.rows_below.begin() + tree.row_start[Offset{front} + 1]);
+  rows.order = static_cast<Index>(label_.size());
+  for (Index i = 0; i < rows.order; ++i) local_of_[label_[static_cast<std::size_t>(i)]] = i;
+  return rows;
+}
+
+/// The children's blocks are in the front now. Returns the lowest place on this stack that is free again.
+template <class Scalar>
+double* ScalarWorker<Scalar>::release_children(Index front, double* storage) {
+  for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
+    WaitingBlock& done = run_.waiting[static_cast<std::size_t>(child)];
+    if (done.own.empty() && done.values != nullptr) storage = std::min(storage, done.values);
+    if (!done.own.empty()) run_.book(-done.own.size() * Offset{sizeof(double)});
+    done = WaitingBlock{};
+  }
+  return storage;
+}
+
+template <class Scalar>
+ScalarElimination ScalarWorker<Scalar>::eliminate(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix,
+                                                  ThreadPool* team) {
+  const auto candidates = static_cast<std::size_t>(rows.candidates);
+  diagonal_.resize(candidates);
+  kind_.resize(candidates);
+  const ScalarFront<Scalar> work{matrix,        rows.candidates,   kind_.data(),  diagonal_.data(),
+                                 label_.data(), row_error_.data(), growth_.data()};
+  const ScalarOptions options{run_.options.definite, std::min(run_.options.pivot_threshold, kMostThreshold),
+                              false};
+  return eliminate_scalar_front(work, options, scratch_, team);
+}
+
+template <class Scalar>
+Status ScalarWorker<Scalar>::process(Index front, ThreadPool* team) {
+  const RowsOfFront rows = list_rows(front);
+  const BlockLayout layout = front_layout(rows.order);
+  double* storage = arena_.push(ScalarBlock<Scalar>::doubles(layout));
+  if (storage == nullptr) return memory_limit(run_.bytes.load());
+  if (Status booked = book_arena(); !booked.ok()) return booked;
+  const ScalarBlock<Scalar> matrix{layout, storage};
+  assemble(rows, matrix, team);
+  double* base = release_children(front, storage);
+  const ScalarElimination result = eliminate(rows, matrix, team);
+  if (Status booked = book_arena(); !booked.ok()) return booked;
+  const bool stuck = run_.analysis.tree.parent[front] < 0 && result.eliminated < rows.candidates;
+  stopped = result.stopped;
+  breakdown = result.not_finite || (stuck && !stopped);
+  if (stopped || breakdown) {
+    run_.abandon = true;
+    return {};
+  }
+  count_pivots(rows, result);
+  two_by_two_pivots += result.two_by_two;
+  delayed_pivots += rows.candidates - result.eliminated;
+  return pack(rows, matrix, result.eliminated, base);
+}
+
+template <class Scalar>
+void ScalarWorker<Scalar>::count_pivots(const RowsOfFront& rows, const ScalarElimination& result) {
+  PivotSigns& total = signs[static_cast<std::size_t>(run_.analysis.tree.component[rows.front])];
+  const double gamma = growth_factor<Scalar>(result.eliminated);
+  // Underflow of products and quotients, seen through L and D of this front: error_bound.md, section 5.
+  const double tiny =
+      0x1p-1060 * rows.order * (1.0 + result.eliminated) * (1 + result.largest_pivot) * result.largest_sum;
+  for (Index k = 0; k < result.eliminated; ++k) {
+    const auto i = static_cast<std::size_t>(k);
+    switch (kind_[i]) {
+      case PivotKind::kZero:
+        ++total.zero;
+        break;
+      case PivotKind::kOne:
+        ++(head(diagonal_[i]) < 0 ? total.negative : total.positive);
+        break;
+      case PivotKind::kTwoFirst:  // its determinant is negative
+        ++total.negative;
+        break;
+      case PivotKind::kTwoSecond:
+        ++total.positive;
+        break;
+    }
+    const double bound = row_error_[i] + gamma * growth_[i] + tiny;
+    // A NaN must not pass for a small number.
+    if (!(bound <= largest_row_error)) largest_row_error = bound;
+  }
+  for (std::size_t i = static_cast<std::size_t>(result.eliminated); i < row_error_.size(); ++i) {
+    row_error_[i] += gamma * growth_[i] + tiny;
+  }
+}
+
+template <class Scalar>
+Status ScalarWorker<Scalar>::pack(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix,
+                                  Index eliminated, double* destination) {
+  const Index order = rows.order - eliminated;
+  arena_.pop_to(destination);
+  if (order == 0) return {};
+  WaitingBlock& out = run_.waiting[static_cast<std::size_t>(rows.front)];
+  out.order = order;
+  out.delayed.assign(label_.begin() + eliminated, label_.begin() + rows.candidates);
+  out.values = arena_.push(waiting_doubles(order));  // `destination` itself
+  if (out.values == nullptr) return memory_limit(run_.bytes.load());
+  const ScalarBlock<Scalar> to{contribution_layout(order), out.values};
+  sums_.assign(static_cast<std::size_t>(order), 0);
+  if (moves_down(matrix, eliminated, to)) {
+    copy_columns(matrix, eliminated, to, sums_.data());
+  } else {
+    Buffer<double> aside(ScalarBlock<Scalar>::doubles(to.layout));
+    copy_columns(matrix, eliminated, {to.layout, aside.data()}, sums_.data());
+    std::memcpy(out.values, aside.data(), static_cast<std::size_t>(aside.size()) * sizeof(double));
+  }
+  out.row_error = out.values + kPlanes * to.layout.size();
+  out.row_sums = out.row_error + order;
+  const double gamma = handed_on_factor<Scalar>(eliminated);
+  for (Index i = 0; i < order; ++i) {
+    const double sum = sums_[static_cast<std::size_t>(i)];
+    out.row_error[i] = row_error_[static_cast<std::size_t>(eliminated + i)] + gamma * sum;
+    out.row_sums[i] = sum;
+  }
+  return {};
+}
+
+template <class Scalar>
+Status ScalarWorker<Scalar>::detach(Index front) {
+  WaitingBlock& block = run_.waiting[static_cast<std::size_t>(front)];
+  if (block.values == nullptr) return {};
+  const Offset doubles = waiting_doubles(block.order);
+  block.own = Buffer<double>(doubles);
+  if (!run_.book(doubles * Offset{sizeof(double)})) return memory_limit(run_.bytes.load());
+  std::memcpy(block.own.data(), block.values, static_cast<std::size_t>(doubles) * sizeof(double));
+  const Offset shift = block.row_error - block.values;
+  block.values = block.own.data();
+  block.row_error = block.values + shift;
+  block.row_sums = block.row_error + block.order;
+  arena_.pop_to(arena_.top() - arena_.used());
+  return {};
+}
+
+template class ScalarWorker<double>;
+template class ScalarWorker<DoubleDouble>;
+
+}  // namespace stanchion

@@ -1,0 +1,92 @@
+// One worker of the extended factorization: assembles a front, eliminates it, leaves its contribution block.
+#pragma once
+
+#include <atomic>
+#include <vector>
+
+#include "base/arena.hpp"
+#include "extended/eliminate.hpp"
+#include "numeric/factorization.hpp"
+
+namespace stanchion {
+
+/// What a front leaves for its parent: the Schur complement of the rows not eliminated, delayed columns
+/// first. Storage: the planes of a ScalarBlock, then two doubles a row.
+struct WaitingBlock {
+  double* values = nullptr;
+  double* row_error = nullptr;  ///< bound on the row sums of the error so far
+  double* row_sums = nullptr;   ///< row sums of |values|
+  Index order = 0;
+  std::vector<Index> delayed;  ///< positions of the delayed columns
+  Buffer<double> own;          ///< set when the block left its worker's stack
+};
+
+/// State shared by the workers of one factorization.
+struct ScalarRun {
+  const Analysis& analysis;
+  const ShiftedMatrix& matrix;
+  const FactorOptions& options;
+  std::vector<std::vector<Index>> children;  ///< of every front, in processing order
+  std::vector<WaitingBlock> waiting;         ///< per front, until its parent is assembled
+  std::atomic<Offset> bytes{0}, peak_bytes{0};
+  std::atomic<bool> abandon{false};  ///< a worker stopped, broke down, failed or was cancelled
+
+  /// Books `change` bytes; false when the cap would be passed.
+  bool book(Offset change);
+};
+
+/// The rows of one front: its own pivots, then columns delayed by its children, then the rows below.
+struct RowsOfFront {
+  Index front = 0, own = 0, candidates = 0, order = 0;
+};
+
+template <class Scalar>
+class ScalarWorker {
+ public:
+  ScalarWorker(ScalarRun& run, Offset arena_doubles);
+  ~ScalarWorker();
+  ScalarWorker(ScalarWorker&&) = delete;
+
+  /// Processes one front whose children are done. `team` null: on this thread alone.
+  Status process(Index front, ThreadPool* team);
+  /// Moves the contribution block of `front` off this worker's stack, which must hold nothing else.
+  Status detach(Index front);
+
+  /// What this worker counted; valid after the run.
+  std::vector<PivotSigns> signs;
+  double largest_row_error = 0;
+  Offset delayed_pivots = 0, two_by_two_pivots = 0;
+  bool stopped = false, breakdown = false;
+
+ private:
+  static constexpr Offset kPlanes = ScalarTraits<Scalar>::planes;
+  static constexpr double kUnit = ScalarTraits<Scalar>::unit;
+  /// Doubles of a waiting block.
+  static Offset waiting_doubles(Index order) {
+    return kPlanes * contribution_layout(order).size() + 2 * Offset{order};
+  }
+
+  RowsOfFront list_rows(Index front);
+  void assemble(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix, ThreadPool* team);
+  void add_matrix_entries(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix);
+  void add_contribution(Index child, const ScalarBlock<Scalar>& matrix, ThreadPool* team);
+  double* release_children(Index front, double* storage);
+  ScalarElimination eliminate(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix, ThreadPool* team);
+  void count_pivots(const RowsOfFront& rows, const ScalarElimination& result);
+  Status pack(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix, Index eliminated,
+              double* destination);
+  Status book_arena();
+
+  ScalarRun& run_;
+  Arena arena_;
+  Offset booked_doubles_ = 0, booked_scratch_ = 0;
+  ScalarScratch scratch_;
+  Buffer<Index> local_of_;    ///< position -> row of the current front
+  std::vector<Index> label_;  ///< row of the current front -> position
+  std::vector<double> row_error_, growth_, addend_sums_, sums_;
+  std::vector<Index> addends_, map_;  ///< contribution blocks that reach a row; child row -> front row
+  std::vector<Scalar> diagonal_;
+  std::vector<PivotKind> kind_;
+};
+
+}  // namespace stanchion

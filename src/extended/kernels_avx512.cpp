@@ -1,0 +1,4 @@
+// The extended kernels for one instruction set; the flags come from CMakeLists.txt.
+#define STANCHION_KERNEL_ISA extended_isa_avx512
+#define STANCHION_KERNEL_NAME "AVX-512"
+#include "extended/kernels_impl.hpp"
