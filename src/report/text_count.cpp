@@ -27,7 +27,8 @@ std::string backing(const ShiftCount& count, Index rows_counted) {
   if (count.method == "offsets") {
     text += count.certificate.runs.size() == 1 ? ", from one factor" : ", from factors on both sides";
   }
-  if (count.certificate.precision == "single") text += ", in single precision";
+  const auto& precision = count.certificate.precision;
+  if (precision && *precision != "double") text += ", in " + *precision + " precision";
   return text;
 }
 

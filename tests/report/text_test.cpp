@@ -100,6 +100,12 @@ TEST(Text, StatisticalCountsSayHowSureTheyAre) {
   EXPECT_FALSE(says(samples::counted(), "Statistics:"));
 }
 
+TEST(Text, OtherPrecisionsThanDoubleAreNamed) {
+  Outcome outcome = samples::counted();
+  outcome.count->counts[1].certificate.precision = "extended";
+  EXPECT_TRUE(says(outcome, "1e-09  proof, from factors on both sides, in extended precision\n"));
+}
+
 TEST(Text, DifferentMeaningsGetAColumn) {
   Outcome outcome = samples::counted();
   outcome.count->counts[1].meaning = "critical factors between f and 0";
