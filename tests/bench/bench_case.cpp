@@ -46,7 +46,7 @@ BenchArguments read_arguments(int argc, char** argv) {
   app.add_flag("--keep", a.keep, "keep the factor (default: discard it where the program can)");
   app.add_flag("--certified", a.certified, "ours: the certified inertia, with all factorizations it takes");
   app.add_flag("--node-map", a.node_map, "ours: give the node of every equation to the ordering");
-  app.add_flag("--our-order", a.our_order, "CHOLMOD: use our elimination order");
+  app.add_flag("--our-order", a.our_order, "peers: use our elimination order");
   try {
     app.parse(argc, argv);
   } catch (const CLI::ParseError& error) {

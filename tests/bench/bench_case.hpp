@@ -20,7 +20,7 @@ struct BenchArguments {
   bool keep = false;                 ///< keep the factor
   bool certified = false;            ///< ours: all factorizations of the certificate, not just one
   bool node_map = false;             ///< ours: tell the ordering which equations share a node
-  bool our_order = false;            ///< CHOLMOD: use our ordering instead of its METIS
+  bool our_order = false;            ///< peers: use our elimination order instead of their own
 };
 
 /// Reads the command line; prints usage and exits with 2 when it does not parse.

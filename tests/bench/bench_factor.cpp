@@ -59,8 +59,10 @@ void certify(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchA
 BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& arguments, ThreadPool& pool) {
   BenchRecord record;
   record.program = "stanchion";
+  record.ordering = "METIS or AMD on groups";
   reset_highest_resident();
   record.resident_before = resident_bytes();
+  const double processor_start = processor_seconds();
   Stopwatch watch;
   std::vector<const SymmetricMatrix*> members;
   for (const auto& member : bench_case.members) members.push_back(&member);
@@ -97,6 +99,7 @@ BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& argument
   record.factor_flops = analysis.forecast.factor_flops;
   record.factor_entries = analysis.forecast.factor_entries;
   record.stored_entries = analysis.forecast.stored_factor_entries;
+  record.whole_cpu_seconds = processor_seconds() - processor_start;
   record.highest_resident = highest_resident_bytes();
   return record;
 }

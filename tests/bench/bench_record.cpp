@@ -10,6 +10,7 @@ namespace stanchion::bench {
 void print_record(const BenchArguments& arguments, int repetition, const BenchRecord& record) {
   nlohmann::ordered_json line;
   line["program"] = record.program;
+  line["ordering"] = record.ordering;
   line["model"] = arguments.model;
   line["rows"] = record.rows;
   line["entries"] = record.entries;
@@ -29,6 +30,7 @@ void print_record(const BenchArguments& arguments, int repetition, const BenchRe
   line["factorizations"] = record.factorizations;
   line["numeric_seconds"] = record.numeric_seconds;
   line["numeric_cpu_seconds"] = record.numeric_cpu_seconds;
+  line["whole_cpu_seconds"] = record.whole_cpu_seconds;
   line["factor_flops"] = record.factor_flops;
   line["gflops"] = record.factorizations * record.factor_flops / record.numeric_seconds * 1e-9;
   line["factor_entries"] = record.factor_entries;

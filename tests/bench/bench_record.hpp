@@ -10,6 +10,7 @@ namespace stanchion::bench {
 
 struct BenchRecord {
   std::string program;
+  std::string ordering;  ///< method, as far as the program says
   Index rows = 0;
   Offset entries = 0;        ///< of the lower triangle of the formed matrix
   double form_seconds = 0;   ///< merging, permuting, scaling, where the program does it apart
@@ -18,6 +19,7 @@ struct BenchRecord {
   int factorizations = 1;  ///< that numeric_seconds covers
   double numeric_seconds = 0;
   double numeric_cpu_seconds = 0;  ///< user + system, all threads
+  double whole_cpu_seconds = 0;    ///< likewise, of the whole repetition
   double factor_flops = 0;         ///< without relaxation zeros, by the program's own ordering
   Offset factor_entries = 0;       ///< likewise
   Offset stored_entries = 0;       ///< of the factor as laid out, relaxation zeros included

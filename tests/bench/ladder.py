@@ -63,6 +63,7 @@ def contenders(question):
     if question.definite:
         yield "CHOLMOD", "peer_cholmod", ()
     yield "MUMPS", "peer_mumps", question.options
+    yield "MUMPS, our order", "peer_mumps", question.options + ("--our-order",)
 
 
 def environment(variant):

@@ -1,16 +1,18 @@
 """Markdown tables of a benchmark run; see ladder.py."""
 
-HEADER = ("| model | rows | question | program | mode | factor-izations | order + analyse s | numeric s (least) | CPU s | "
-          "GFLOP/s | of dgemm | flops e9 | L entries e6 | peak over matrix MB | delayed | negative | "
-          "numeric: ours is | all: ours is | memory: ours is |")
+COLUMNS = ["model", "rows", "question", "program", "ordering", "mode", "factorizations", "order + analyse s", "numeric s (least)",
+           "CPU s", "GFLOP/s", "of dgemm", "flops e9", "L entries e6", "peak over matrix MB", "delayed", "negative",
+           "ratio numeric", "ratio all", "ratio numeric CPU", "ratio all CPU", "ratio memory"]
 
 LEGEND = """Medians over the repetitions; one process each, ours and theirs in turn. `least`: the fastest repetition.
 CPU s: user + system of the numeric phase over all threads (a BLAS thread that spins counts). GFLOP/s: flops of the
-program's own ordering without relaxation zeros, over the numeric wall clock. `of dgemm`: against the best rate that the
-dense product reached in this block on as many single-threaded workers. Peak: VmHWM of the process over its resident set with only
-the matrix loaded. `ours is`: their figure over that of `stanchion` (one factorization) on the same question; above 1 we are
-ahead. `stanchion, certified` does the whole certificate: one factorization for a definite matrix, two offsets or more
-otherwise; the peers give no certificate. Threads: our workers; for the peers the threads of the BLAS.
+program's own ordering without relaxation zeros, over the numeric wall clock. `of dgemm`: against the best rate that
+the dense product reached in this block on as many single-threaded workers. Peak: VmHWM of the process over its
+resident set with only the matrix loaded. `ratio`: their figure over that of `stanchion` (one factorization) on the
+same question, above 1 we are ahead; `all` includes ordering and analysis. On a busy machine compare CPU seconds on
+one thread. `stanchion, certified` does the whole certificate: one factorization for a definite matrix, two offsets or
+more otherwise; the peers give no certificate. A MUMPS built without METIS orders by SCOTCH or AMF; `our order` gives
+it ours. Threads: our workers; for the peers the threads of the BLAS.
 `!` marks a run that stopped, broke down, failed or was left unresolved.
 """
 
@@ -34,33 +36,40 @@ def dgemm_rate(block):
 
 
 def row(entry, label, line, ours, rate):
-    cells = [entry["model"], line["rows"], entry["question"], label + ("" if line["valid"] else " !"), mode(line),
+    cells = [entry["model"], line["rows"], entry["question"], label + ("" if line["valid"] else " !"),
+             line["ordering"], mode(line),
              line["factorizations"], f"{seconds_before_numeric(line):.3f}",
              f"{line['numeric_seconds']:.3f} ({line['least_numeric_seconds']:.3f})",
              f"{line['numeric_cpu_seconds']:.3f}", f"{line['gflops']:.1f}", f"{100 * line['gflops'] / rate:.0f} %",
              f"{line['factor_flops'] / 1e9:.2f}", f"{line['factor_entries'] / 1e6:.2f}",
              f"{line['increase_over_matrix_bytes'] / 1e6:.0f}", line["delayed_pivots"], line["negative"]]
     if ours is None or label.startswith("stanchion"):
-        cells += ["", "", ""]
+        cells += [""] * 5
     else:
         whole = seconds_before_numeric(line) + line["numeric_seconds"]
         our_whole = seconds_before_numeric(ours) + ours["numeric_seconds"]
         cells += [ratio(line["numeric_seconds"], ours["numeric_seconds"]), ratio(whole, our_whole),
+                  ratio(line["numeric_cpu_seconds"], ours["numeric_cpu_seconds"]),
+                  ratio(line["whole_cpu_seconds"], ours["whole_cpu_seconds"]),
                   ratio(line["increase_over_matrix_bytes"], ours["increase_over_matrix_bytes"])]
     return "| " + " | ".join(str(cell) for cell in cells) + " |"
+
+
+def heading(block, rate):
+    loads = [entry["load_average"] for entry in block["rows"]]
+    blas_threads = max(line["gflops_two_blas_threads"] for line in block["dgemm"])
+    return (f"{block['dgemm'][0]['blas']}; dgemm at most {rate:.1f} GFLOP/s on {block['threads']} worker(s), "
+            f"{blas_threads:.1f} on two threads of the BLAS. Load average {min(loads):.1f} to {max(loads):.1f}.")
 
 
 def markdown(blocks):
     lines = ["# Side by side with the peers", "", LEGEND]
     for block in blocks:
+        if not block["rows"]:
+            continue
         rate = dgemm_rate(block)
-        first = block["dgemm"][0]
-        lines += [f"## BLAS {block['variant']}, {block['threads']} thread(s)", "",
-                  f"{first['blas']}; dgemm at most {rate:.1f} GFLOP/s on {block['threads']} worker(s), "
-                  f"{max(line['gflops_two_blas_threads'] for line in block['dgemm']):.1f} on two threads of the BLAS. "
-                  f"Load average {min(r['load_average'] for r in block['rows']):.1f} to "
-                  f"{max(r['load_average'] for r in block['rows']):.1f}." if block["rows"] else "", "",
-                  HEADER, "|" + "---|" * HEADER.count(" | ") + "---|"]
+        lines += [f"## BLAS {block['variant']}, {block['threads']} thread(s)", "", heading(block, rate), "",
+                  "| " + " | ".join(COLUMNS) + " |", "|" + "---|" * len(COLUMNS)]
         for entry in block["rows"]:
             ours = entry["results"].get("stanchion")
             lines += [row(entry, label, line, ours, rate) for label, line in entry["results"].items()]

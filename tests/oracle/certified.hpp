@@ -12,16 +12,4 @@ inline CertifiedInertia certify(const Prepared& prepared, OffsetOptions options 
   return result.ok() ? std::move(*result) : CertifiedInertia{};
 }
 
-/// A + shift I, on A's pattern and the diagonal.
-inline SymmetricMatrix plus_identity(const SymmetricMatrix& matrix, double shift) {
-  std::vector<Triplet> entries;
-  for (Index j = 0; j < matrix.rows; ++j) {
-    entries.push_back({j, j, shift});
-    for (Offset k = matrix.column_start[j]; k < matrix.column_start[Offset{j} + 1]; ++k) {
-      entries.push_back({matrix.row[k], j, matrix.value[k]});
-    }
-  }
-  return from_triplets(matrix.rows, entries);
-}
-
 }  // namespace stanchion::test

@@ -1,5 +1,5 @@
-# The general-purpose solvers that serve as oracles and as the other side of benchmarks. Each is optional: sets
-# STANCHION_CHOLMOD and STANCHION_MUMPS, and the library targets peer_cholmod_solver and peer_mumps_solver.
+# The general-purpose solvers that serve as oracles and as the other side of benchmarks. Each is optional: the library
+# targets peer_cholmod_solver and peer_mumps_solver exist where the solver was found.
 include_guard(GLOBAL)
 
 find_path(CHOLMOD_INCLUDE_DIR cholmod.h PATH_SUFFIXES suitesparse)
@@ -8,9 +8,7 @@ find_path(MUMPS_INCLUDE_DIR dmumps_c.h)
 find_library(MUMPS_LIBRARY dmumps_seq)
 find_library(MUMPS_MPI_LIBRARY mpiseq_seq)
 
-set(STANCHION_CHOLMOD OFF)
 if(CHOLMOD_INCLUDE_DIR AND CHOLMOD_LIBRARY)
-  set(STANCHION_CHOLMOD ON)
   add_library(peer_cholmod_solver STATIC ${CMAKE_CURRENT_LIST_DIR}/cholmod_solver.cpp)
   target_include_directories(peer_cholmod_solver SYSTEM PRIVATE ${CHOLMOD_INCLUDE_DIR})
   target_include_directories(peer_cholmod_solver PUBLIC ${PROJECT_SOURCE_DIR}/tests)
@@ -19,9 +17,7 @@ else()
   message(STATUS "CHOLMOD not found (libsuitesparse-dev): its oracle tests and benchmark are left out")
 endif()
 
-set(STANCHION_MUMPS OFF)
 if(MUMPS_INCLUDE_DIR AND MUMPS_LIBRARY AND MUMPS_MPI_LIBRARY)
-  set(STANCHION_MUMPS ON)
   add_library(peer_mumps_solver STATIC ${CMAKE_CURRENT_LIST_DIR}/mumps_solver.cpp)
   target_include_directories(peer_mumps_solver SYSTEM PRIVATE ${MUMPS_INCLUDE_DIR})
   target_include_directories(peer_mumps_solver PUBLIC ${PROJECT_SOURCE_DIR}/tests)

@@ -9,6 +9,13 @@ namespace {
 
 constexpr int kWholeWorld = -987654;  // MUMPS's stand-in for MPI_COMM_WORLD
 
+/// Values of ICNTL(7) and INFOG(7).
+constexpr int kGiven = 1, kMetis = 5;
+const char* ordering_name(int code) {
+  constexpr const char* kNames[] = {"AMD", "given", "AMF", "SCOTCH", "PORD", "METIS", "QAMD"};
+  return code >= 0 && code < 7 ? kNames[code] : "";
+}
+
 /// Counts above 2^31 are given as negative millions.
 Offset wide_count(int value) {
   return value >= 0 ? Offset{value} : Offset{-value} * 1'000'000;
@@ -20,7 +27,7 @@ struct MumpsSolver::State {
   DMUMPS_STRUC_C mumps{};
   MumpsOptions options;
   bool open = false;
-  std::vector<int> row, column;
+  std::vector<int> row, column, position;
   std::vector<double> value;
 
   void call(int job) {
@@ -61,7 +68,7 @@ void MumpsSolver::release() {
   state_->close();
 }
 
-PeerStructure MumpsSolver::analyse() {
+PeerStructure MumpsSolver::analyse(std::span<const Index> order) {
   State& s = *state_;
   release();
   const MUMPS_INT n = static_cast<MUMPS_INT>(s.mumps.n);
@@ -73,7 +80,7 @@ PeerStructure MumpsSolver::analyse() {
   s.open = true;
   for (int stream = 1; stream <= 3; ++stream) s.control(stream) = -1;
   s.control(4) = 0;
-  s.control(7) = 5;   // METIS
+  s.control(7) = order.empty() ? kMetis : kGiven;
   s.control(24) = 0;  // no null pivot detection
   s.control(31) = s.options.discard_factors ? 1 : 0;
   s.mumps.n = n;
@@ -81,8 +88,13 @@ PeerStructure MumpsSolver::analyse() {
   s.mumps.irn = s.row.data();
   s.mumps.jcn = s.column.data();
   s.mumps.a = s.value.data();
+  s.position.resize(order.size());
+  for (std::size_t k = 0; k < order.size(); ++k) {
+    s.position[static_cast<std::size_t>(order[k])] = static_cast<int>(k) + 1;
+  }
+  s.mumps.perm_in = s.position.data();
   s.call(1);
-  return {s.fact(1) >= 0, wide_count(s.fact(20)), s.mumps.rinfog[0]};
+  return {s.fact(1) >= 0, wide_count(s.fact(20)), s.mumps.rinfog[0], ordering_name(s.fact(7))};
 }
 
 PeerFactorization MumpsSolver::factor() {

@@ -2,6 +2,7 @@
 #pragma once
 
 #include <memory>
+#include <span>
 
 #include "oracle/peer_result.hpp"
 #include "sparse/symmetric_matrix.hpp"
@@ -23,8 +24,10 @@ class MumpsSolver {
   MumpsSolver(const MumpsSolver&) = delete;
   MumpsSolver& operator=(const MumpsSolver&) = delete;
 
-  /// Forgets the earlier analysis and makes it again.
-  PeerStructure analyse();
+  /// Forgets the earlier analysis and makes it again, with `order` (equation eliminated k-th) or, when that
+  /// is empty, with METIS. A MUMPS that was built without METIS takes its own default instead: see the
+  /// result.
+  PeerStructure analyse(std::span<const Index> order = {});
 
   /// Frees everything but the triplets.
   void release();

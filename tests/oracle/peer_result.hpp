@@ -10,6 +10,7 @@ struct PeerStructure {
   bool ok = false;
   Offset factor_entries = 0;  ///< of L, diagonal included, without relaxation zeros
   double factor_flops = 0;    ///< without relaxation zeros
+  const char* ordering = "";  ///< the method effectively used
 };
 
 /// Known after the factorization.
