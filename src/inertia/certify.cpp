@@ -33,6 +33,7 @@ Result<CertifiedInertia> by_relative_test(const Analysis& analysis, const Shifte
   factor_options.keep_factor = true;
   auto factorization = factorize(analysis, unshifted, factor_options, pool);
   if (!factorization.ok()) return factorization.status();
+  if (Status sound = check_fault(analysis, *factorization); !sound.ok()) return sound;
   found.factorizations = 1;
   found.seconds = factorization->seconds;
   found.delayed_pivots = factorization->delayed_pivots;
@@ -57,32 +58,64 @@ Result<CertifiedInertia> by_relative_test(const Analysis& analysis, const Shifte
   return found;
 }
 
+/// Below this many operations a second factorization costs less than anyone notices, and a proof says more.
+constexpr double kProofIsCheap = 5e9;
+
+class Certifier {
+ public:
+  Certifier(const Analysis& analysis, const ShiftedMatrix& matrix, const CertifyOptions& options, ThreadPool& pool)
+      : analysis_(analysis), matrix_(matrix), options_(options), pool_(pool) {}
+
+  Result<CertifiedInertia> run() {
+    OffsetOptions offsets = options_.offsets;
+    if (!relative_allowed(analysis_, options_)) return certify_by_offsets(analysis_, matrix_, offsets, pool_);
+    if (offsets.definite_first) {
+      offsets.definite_only = true;
+      auto definite = certify_by_offsets(analysis_, matrix_, offsets, pool_);
+      if (settled(definite)) return with_costs(std::move(definite));
+      offsets.definite_only = offsets.definite_first = false;
+    }
+    if (analysis_.forecast.front_flops < kProofIsCheap) {
+      auto both = certify_by_offsets(analysis_, matrix_, offsets, pool_);
+      if (settled(both)) return with_costs(std::move(both));
+      auto relative = by_relative_test(analysis_, matrix_, options_, pool_);
+      if (settled(relative)) return with_costs(std::move(relative));
+      return with_costs(std::move(both), false);
+    }
+    auto relative = by_relative_test(analysis_, matrix_, options_, pool_);
+    if (settled(relative)) return with_costs(std::move(relative));
+    return with_costs(certify_by_offsets(analysis_, matrix_, offsets, pool_));
+  }
+
+ private:
+  /// An answer without zero directions, or a failure; otherwise its cost is kept for the sum.
+  bool settled(const Result<CertifiedInertia>& found) {
+    if (!found.ok()) return true;
+    if (found->certificate.level != Level::kNone && found->inertia.zero == 0) return true;
+    add_cost(spent_, *found);
+    return false;
+  }
+
+  /// Adds what earlier attempts cost; `own_cost_counted`: the answer's own cost is not among them yet.
+  Result<CertifiedInertia> with_costs(Result<CertifiedInertia> found, bool own_cost_counted = true) {
+    if (!found.ok()) return found;
+    if (!own_cost_counted) found->factorizations = 0, found->seconds = 0, found->certify_seconds = 0;
+    add_cost(*found, spent_);
+    return found;
+  }
+
+  const Analysis& analysis_;
+  const ShiftedMatrix& matrix_;
+  const CertifyOptions& options_;
+  ThreadPool& pool_;
+  CertifiedInertia spent_;
+};
+
 }  // namespace
 
 Result<CertifiedInertia> certify_inertia(const Analysis& analysis, const ShiftedMatrix& matrix,
                                          const CertifyOptions& options, ThreadPool& pool) {
-  CertifiedInertia spent;
-  OffsetOptions offsets = options.offsets;
-  if (!relative_allowed(analysis, options)) return certify_by_offsets(analysis, matrix, offsets, pool);
-  if (offsets.definite_first) {
-    offsets.definite_only = true;
-    auto definite = certify_by_offsets(analysis, matrix, offsets, pool);
-    if (!definite.ok() || definite->certificate.level == Level::kProved) return definite;
-    add_cost(spent, *definite);
-    offsets.definite_only = false;
-    offsets.definite_first = false;
-  }
-  auto relative = by_relative_test(analysis, matrix, options, pool);
-  if (!relative.ok()) return relative.status();
-  if (relative->certificate.level != Level::kNone) {
-    add_cost(*relative, spent);
-    return relative;
-  }
-  add_cost(spent, *relative);
-  auto both = certify_by_offsets(analysis, matrix, offsets, pool);
-  if (!both.ok()) return both.status();
-  add_cost(*both, spent);
-  return both;
+  return Certifier(analysis, matrix, options, pool).run();
 }
 
 }  // namespace stanchion

@@ -67,6 +67,7 @@ class OffsetScheme {
     auto result = options_.extended ? factorize_extended(analysis_, shifted, factor_options, pool_)
                                     : factorize(analysis_, shifted, factor_options, pool_);
     if (!result.ok()) return result.status();
+    if (Status sound = check_fault(analysis_, *result); !sound.ok()) return sound;
     ++found_.factorizations;
     found_.delayed_pivots = std::max(found_.delayed_pivots, result->delayed_pivots);
     found_.two_by_two_pivots = std::max(found_.two_by_two_pivots, result->two_by_two_pivots);

@@ -64,6 +64,10 @@ struct Factorization {
 Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
                                 ThreadPool& pool);
 
+/// Ok, or internal "machine-fault" naming the equation when the factorization found that the machine computed wrongly:
+/// no answer may then be given. Whoever uses a Factorization asks this first.
+Status check_fault(const Analysis& analysis, const Factorization& factorization);
+
 /// x = A^-1 b by the factor, for `columns` right-hand sides stored one after the other (each factor.rows long, in
 /// elimination order), in place. Zero pivots are an error "singular". Cost: 4 entries of L a column.
 Status solve(const Factor& factor, double* x, Index columns);

@@ -171,6 +171,16 @@ class Factorizer {
 
 }  // namespace
 
+Status check_fault(const Analysis& analysis, const Factorization& factorization) {
+  if (!factorization.fault) return {};
+  const Index equation = analysis.tree.equation_at[factorization.fault_row];
+  return {StatusKind::kInternal, "machine-fault",
+          "the factors do not reproduce the matrix within their proved error bound: a fault of the machine, its memory "
+          "or its BLAS (" + blas_description() + "); no answer is given",
+          "equation " + std::to_string(Offset{equation} + 1),
+          "run `stanchion selftest`; then try again with another BLAS or on another machine"};
+}
+
 Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
                                 ThreadPool& pool) {
   use_single_threaded_blas();

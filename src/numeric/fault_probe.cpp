@@ -21,8 +21,8 @@ Buffer<signed char> draw_signs(Index rows, const CounterRandom& random) {
   return sign;
 }
 
-/// A sum with the sizes of its partial sums: each addition rounds by at most a unit of its result, and multiplying
-/// by a sign is exact.
+/// A sum with the sizes of its partial sums: each addition rounds by at most a unit of its result, and
+/// multiplying by a sign is exact.
 struct TrackedSum {
   double value = 0, sizes = 0;
   void add(double term) {
