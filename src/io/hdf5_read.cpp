@@ -199,6 +199,10 @@ class Hdf5Reader {
     if (!type.ok() || numbers.length < 0) {
       return refuse("bad-array", std::string("the dataset \"") + name + "\" is no list of numbers");
     }
+    const Handle layout(H5Dget_create_plist(dataset), H5Pclose);
+    if (!layout.ok() || H5Pget_external_count(layout) != 0 || H5Pget_layout(layout) == H5D_VIRTUAL) {
+      return refuse("external-data", std::string("the dataset \"") + name + "\" lies in another file");
+    }
     const H5T_class_t kind = H5Tget_class(type);
     numbers.whole = kind == H5T_INTEGER;
     numbers.bytes = H5Tget_size(type);

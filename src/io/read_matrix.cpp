@@ -82,6 +82,10 @@ Result<MatrixFile> read_hdf5_file(const std::string& file, const std::string& gr
                                   const MatrixReadOptions& options, ThreadPool& pool) {
   auto mapped = MappedFile::open(file);
   if (!mapped.ok()) return mapped.status();
+  if (!is_hdf5(mapped->bytes())) {
+    return Status::bad_input("not-hdf5", "a group is named, and the file is not in HDF5 format", file,
+                             "leave the group out");
+  }
   auto raw = read_hdf5(file, group, memory_limit(options), options.dofs);
   if (!raw.ok()) return raw.status();
   FileDigest digest(mapped->bytes());

@@ -17,6 +17,31 @@ TEST(Hdf5, TheGroupMayBeNamed) {
   ASSERT_FALSE(wrong.ok());
   EXPECT_EQ(wrong.status().code(), "no-matrix-group");
   EXPECT_EQ(read_matrix("/no/such.h5:/mass", {}, pool).status().code(), "file-not-found");
+  const std::string other = std::string(STANCHION_DATA) + "/examples/matrix_market/valid.mtx:/mass";
+  EXPECT_EQ(read_matrix(other, {}, pool).status().code(), "not-hdf5");
+}
+
+TEST(Hdf5, AmongSeveralGroupsOneMustBeNamed) {
+  const std::string path = std::string(STANCHION_TEST_FILES) + "/two_groups.h5";
+  ThreadPool pool(1);
+  const auto any = read_matrix(path, {}, pool);
+  ASSERT_FALSE(any.ok());
+  EXPECT_EQ(any.status().code(), "several-groups");
+  const auto whole = read_matrix(path + ":/k", {}, pool), real = read_matrix(path + ":/g", {}, pool);
+  ASSERT_TRUE(whole.ok()) << whole.status().to_string();
+  ASSERT_TRUE(real.ok()) << real.status().to_string();
+  EXPECT_TRUE(testing::same(whole->matrix, from_triplets(2, {{0, 0, 4}, {1, 0, -1}, {1, 1, 5}})));
+  EXPECT_TRUE(testing::same(whole->matrix, real->matrix));
+  EXPECT_EQ(whole->format, "HDF5 group, csc");
+  EXPECT_EQ(real->format, "HDF5 group, by rows or columns");
+  EXPECT_EQ(read_matrix(path + ":/bsr", {}, pool).status().code(), "unsupported-format");
+  EXPECT_EQ(read_matrix(path + ":/rounds", {}, pool).status().code(), "integer-rounds");
+}
+
+TEST(Hdf5, DataInOtherFilesAreNotFollowed) {
+  ThreadPool pool(1);
+  EXPECT_EQ(read_matrix(std::string(STANCHION_TEST_FILES) + "/external.h5", {}, pool).status().code(),
+            "external-data");
 }
 
 TEST(Hdf5, OwnFilesSayTheirFormatAndSize) {

@@ -9,7 +9,7 @@ namespace stanchion {
 namespace {
 
 void little(std::string& text, std::uint64_t value, int bytes) {
-  for (int i = 0; i < bytes; ++i) text.push_back(static_cast<char>(value >> (8 * i) & 0xff));
+  for (int i = 0; i < bytes; ++i) text.push_back(static_cast<char>(i < 8 ? value >> (8 * i) & 0xff : 0));
 }
 
 /// A plain archive of stored members, without zip64.
