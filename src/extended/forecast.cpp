@@ -9,9 +9,10 @@ namespace stanchion {
 namespace {
 
 constexpr Index kTimedRows = 128;
-/// What is spent besides products, in products: assembling and handing on one entry of a front; starting one
-/// call of the inner loop (one a column of the front and pivot, inside a panel).
-constexpr double kProductsPerEntry = 25, kProductsPerCall = 40;
+/// What is spent besides products, in seconds: assembling and handing on one entry of a front; starting one
+/// call of the inner loop (one a column of the front and pivot, inside a panel); forming and booking one row.
+/// Measured on a server of 2023; a slower machine has slower products too.
+constexpr double kSecondsPerEntry = 8e-9, kSecondsPerCall = 14e-9, kSecondsPerRow = 1e-7;
 /// Share of the speed of the bare loop that whole fronts reach.
 constexpr double kEfficiency = 0.8;
 
@@ -36,15 +37,15 @@ double products_per_second() {
 
 double extended_seconds_forecast(const Analysis& analysis) {
   const AssemblyTree& tree = analysis.tree;
-  double products = 0;
+  double products = 0, overhead = kSecondsPerRow * tree.rows;
   for (Index f = 0; f < tree.fronts; ++f) {
     const double order = tree.order(f), pivots = tree.pivots(f);
     const double panel = std::min<double>(pivots, kExtendedPanel);
-    products += front_flops(tree.order(f), tree.pivots(f)) / 2 / kEfficiency;
-    products += kProductsPerEntry * order * (order + 1) / 2 + kProductsPerCall * (pivots * panel / 2 + order);
+    products += front_flops(tree.order(f), tree.pivots(f)) / 2;
+    overhead += kSecondsPerEntry * order * (order + 1) / 2 + kSecondsPerCall * (pivots * panel / 2 + order);
   }
   const double workers = std::max(1, analysis.schedule.workers);
-  return products / products_per_second() / workers;
+  return (products / (kEfficiency * products_per_second()) + overhead) / workers;
 }
 
 Offset extended_peak_bytes_forecast(const Analysis& analysis) {

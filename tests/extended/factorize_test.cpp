@@ -4,6 +4,7 @@
 #include "extended/exact.hpp"
 #include "extended/factorize.hpp"
 #include "inertia/two_offsets.hpp"
+#include "support/dense_reference.hpp"
 #include "support/factored.hpp"
 #include "support/generators.hpp"
 
@@ -83,15 +84,15 @@ SymmetricMatrix free_chain(Index n) {
 std::vector<SymmetricMatrix> small_matrices() {
   Random random(61);
   std::vector<SymmetricMatrix> list;
-  list.push_back(pascal(16, 0));
-  list.push_back(pascal(16, 1));
-  list.push_back(pascal(16, 2));
+  list.push_back(pascal(14, 0));
+  list.push_back(pascal(14, 1));
+  list.push_back(pascal(14, 2));
   list.push_back(inverse_hilbert(9, 1));
   list.push_back(inverse_hilbert(9, 0.5));
-  list.push_back(tiny_diagonal(random, 18));
-  list.push_back(test::saddle(random, 16, 6));
-  list.push_back(test::wildly_scaled(random, test::random_sparse(random, 20, 4, 0.5, 0), 4));
-  list.push_back(test::random_sparse(random, 24, 3, 0.9, 0));
+  list.push_back(tiny_diagonal(random, 14));
+  list.push_back(test::saddle(random, 12, 5));
+  list.push_back(test::wildly_scaled(random, test::random_sparse(random, 16, 4, 0.5, 0), 4));
+  list.push_back(test::random_sparse(random, 20, 3, 0.9, 0));
   list.push_back(free_chain(24));
   return list;
 }
@@ -113,10 +114,8 @@ void expect_bracketed(Factorize factorize_by, const SymmetricMatrix& matrix, dou
 
 TEST(FactorizeExtended, CountsLieBetweenExactInertiasOneBoundApart) {
   for (const SymmetricMatrix& matrix : small_matrices()) {
-    for (const double offset : {0.0, 0x1p-90, -0x1p-97, 1e-3})
-      expect_bracketed(factorize_extended, matrix, offset);
-    for (const double offset : {0.0, 0x1p-44, -0x1p-50, 1e-3})
-      expect_bracketed(factorize_plainly, matrix, offset);
+    for (const double offset : {0.0, 0x1p-90, 1e-3}) expect_bracketed(factorize_extended, matrix, offset);
+    for (const double offset : {0.0, -0x1p-44}) expect_bracketed(factorize_plainly, matrix, offset);
   }
 }
 
@@ -141,6 +140,28 @@ TEST(FactorizeExtended, LaplacianCountsMatchTheClosedForm) {
     const auto below = std::count_if(spectrum.begin(), spectrum.end(), [&](double v) { return v < shift; });
     EXPECT_EQ(signs(f), (std::array<Offset, 3>{below, 0, Offset{504} - below})) << "shift " << shift;
   }
+}
+
+TEST(FactorizeExtended, DelayedColumnsAndPairsArriveAtTheRightCounts) {
+  Random random(67);
+  Offset delayed = 0, pairs = 0;
+  for (int round = 0; round < 12; ++round) {
+    const SymmetricMatrix matrix = test::random_sparse(random, 60 + 20 * round, 4, 0.8, 0);
+    const auto f = factor_extended(prepare(matrix, 1, false), 0);
+    ASSERT_FALSE(f.breakdown);
+    const auto values = test::eigenvalues(matrix);
+    const double noise = 1e-13 * std::max(std::fabs(values.front()), std::fabs(values.back()));
+    const auto negative = std::count_if(values.begin(), values.end(), [&](double v) { return v < -noise; });
+    const auto positive = std::count_if(values.begin(), values.end(), [&](double v) { return v > noise; });
+    EXPECT_GE(f.signs.negative + f.signs.zero, negative);
+    EXPECT_GE(f.signs.positive + f.signs.zero, positive);
+    EXPECT_EQ(f.signs.negative + f.signs.zero + f.signs.positive, matrix.rows);
+    EXPECT_LT(f.error_bound, 1e-22);
+    delayed += f.delayed_pivots;
+    pairs += f.two_by_two_pivots;
+  }
+  EXPECT_GT(delayed, 10);
+  EXPECT_GT(pairs, 10);
 }
 
 TEST(FactorizeExtended, ZeroRowsAreZeroPivotsAndPartsAreCountedApart) {
