@@ -2,6 +2,7 @@
 // The JSON written from it is described in data/schemas/outcome-1.json, key for key.
 #pragma once
 
+#include <cstdint>
 #include <optional>
 #include <string>
 #include <vector>
@@ -51,6 +52,13 @@ struct Certificate {
   std::vector<OffsetRun> runs;
 };
 
+/// A vector that shows to anyone that the matrix is not positive definite: one product proves it.
+struct Witness {
+  std::vector<double> x;      ///< one entry per equation of the files, zero where struck
+  double quadratic_form = 0;  ///< x^T A x
+  double error_bound = 0;     ///< of that number; quadratic_form + error_bound < 0
+};
+
 /// The structure on its constraints (saddle point matrices); absent members: only the range is known.
 struct ConstrainedOutcome {
   Index multipliers = 0;
@@ -58,6 +66,7 @@ struct ConstrainedOutcome {
   std::optional<Index> redundant;
   std::optional<Inertia> inertia;
   std::optional<std::pair<Index, Index>> negative_range;
+  std::vector<Index> redundant_equations;  ///< multipliers, from 1 as in the files, whose constraint repeats another
 };
 
 struct CheckOutcome {
@@ -66,6 +75,7 @@ struct CheckOutcome {
   Certificate certificate;
   std::optional<Verdict> verdict_as_written;  ///< with --digits: for all matrices that round to the file
   std::optional<ConstrainedOutcome> constrained;
+  std::optional<Witness> witness;
 };
 
 /// The answer at one shift.
@@ -139,7 +149,9 @@ struct Outcome {
   MemoryUse memory;
   Warnings warnings;
   std::vector<std::string> not_checked;
-  double risk = 0;
+  double risk = 0;          ///< spent: total failure probability of the statistical statements
+  double risk_allowed = 0;  ///< the budget of the document
+  std::uint64_t seed = 1;
   std::optional<std::string> title, reference;
   std::optional<CheckOutcome> check;
   std::optional<CountOutcome> count;

@@ -16,6 +16,11 @@ enum class Pencil {
   kMass,       ///< K - s M
 };
 
+enum class Precision {
+  kDouble,
+  kExtended,  ///< factored in double-double: slow, for what double cannot tell apart
+};
+
 /// One `--add FILE:factor`.
 struct AddedMatrix {
   std::string path;
@@ -45,6 +50,9 @@ struct Request {
   double risk = 1e-6;
   std::optional<int> digits;
   std::uint64_t seed = 1;
+  Precision precision = Precision::kDouble;
+  bool want_witness = false;  ///< check: also look for x with x^T A x < 0 beyond its rounding
+  bool second_path = false;   ///< another ordering and the plain kernels, to repeat a claim independently
 };
 
 }  // namespace stanchion

@@ -1,37 +1,40 @@
 #include <algorithm>
+#include <cstdio>
 
 #include "base/clock.hpp"
+#include "engine/constraints.hpp"
 #include "engine/prepared_pencil.hpp"
+#include "extended/factorize.hpp"
 
 namespace stanchion {
 namespace {
-
-/// Gould, Math. Program. 32 (1985): In(A) = In(Z^T K Z) + (p, p, q - p), p the rank of the constraints. A without
-/// zero directions has constraints of full rank, p = q; otherwise only a range follows here.
-ConstrainedOutcome on_constraints(const Inertia& inertia, Level level, Index multipliers) {
-  ConstrainedOutcome constrained;
-  constrained.multipliers = multipliers;
-  if (level == Level::kNone) return constrained;
-  if (inertia.zero == 0 && inertia.negative >= multipliers) {
-    constrained.rank = multipliers;
-    constrained.redundant = 0;
-    constrained.inertia = Inertia{inertia.negative - multipliers, 0, inertia.positive - multipliers, 0};
-    return constrained;
-  }
-  const Index least = std::max<Index>(0, inertia.negative - multipliers);
-  const Index most = std::max<Index>(0, inertia.negative + inertia.zero - multipliers) + inertia.zero;
-  constrained.negative_range = {least, most};
-  return constrained;
-}
 
 void explain_unresolved(const CertifiedInertia& certified, Outcome& outcome) {
   if (certified.unresolved_because.empty()) return;
   outcome.warnings.push_back({"unresolved", certified.unresolved_because, outcome.inputs.front().path});
 }
 
+/// What double precision leaves open the same structure in double-double may tell.
+void offer_last_resort(const PreparedPencil& pencil, const Request& request, Outcome& outcome) {
+  if (request.precision == Precision::kExtended || request.resolution) return;
+  char seconds[32];
+  std::snprintf(seconds, sizeof(seconds), "%.2g", extended_seconds_forecast(pencil.analysis()));
+  outcome.warnings.push_back({"last-resort",
+                              "double precision cannot tell the zero directions from small ones of either sign; "
+                              "--precision extended resolves some 15 digits more, in about " +
+                                  std::string(seconds) + " s a factorization",
+                              outcome.inputs.front().path});
+}
+
 Result<Outcome> check_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
                             Outcome outcome) {
-  const std::vector<Index> multipliers = model.multipliers;
+  const std::vector<Index> multipliers = model.multipliers, original = model.original;
+  ConstraintRank rank;
+  if (!multipliers.empty()) {
+    auto certified_rank = certify_constraint_rank(model.stiffness, multipliers, request, context, pool, outcome);
+    if (!certified_rank.ok()) return certified_rank.status();
+    rank = std::move(*certified_rank);
+  }
   auto pencil = PreparedPencil::make(model, false, request, context, pool, outcome);
   if (!pencil.ok()) return pencil.status();
   const bool definite_first = multipliers.empty();
@@ -44,9 +47,20 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
       "arithmetic rounds to nearest as IEEE 754 binary64 prescribes, and the dense products sum in some order");
   check.verdict = verdict_of(check.inertia, check.certificate.level);
   explain_unresolved(*certified, outcome);
+  if (check.inertia.zero > 0 || check.verdict == Verdict::kUnresolved) offer_last_resort(*pencil, request, outcome);
   if (!multipliers.empty()) {
-    check.constrained =
-        on_constraints(check.inertia, check.certificate.level, static_cast<Index>(multipliers.size()));
+    check.constrained = judge_on_constraints(check.inertia, check.certificate.level, rank, original);
+    if (!rank.bordered) {
+      outcome.warnings.push_back({"multipliers-coupled",
+                                  "multipliers act on each other (entries between their rows), so the structure on its "
+                                  "constraints is not judged. Remedy: check the list given to --multipliers",
+                                  outcome.inputs.front().path});
+    }
+  }
+  if (request.want_witness && check.verdict != Verdict::kPositiveDefinite) {
+    auto witness = pencil->find_witness(original, outcome.rows_analysed + outcome.rows_struck, pool, outcome);
+    if (!witness.ok()) return witness.status();
+    check.witness = std::move(*witness);
   }
   if (request.digits) {
     auto rounded = pencil->certify(0, definite_first, pencil->digits_error(0, *request.digits), pool, outcome);

@@ -69,9 +69,11 @@ class Counter {
     auto pencil = PreparedPencil::make(model, alone, request_, context_, pool_, outcome_);
     if (!pencil.ok()) return pencil.status();
     pencil_ = &*pencil;
+    if (alone || mass_diagonal_) pencil_->set_second_bound_from_diagonal();
     if (request_.pencil == Pencil::kGeometric) {
       auto definite = pencil_->certify(0, true, 0, pool_, outcome_);
       if (!definite.ok()) return definite.status();
+      stiffness_bound_ = definite->certificate.smallest_eigenvalue_above.value_or(0);
       stiffness_definite_ = verdict_of(definite->inertia, definite->certificate.level) == Verdict::kPositiveDefinite;
       if (!stiffness_definite_) warn_not_definite(*definite);
     }
@@ -104,7 +106,7 @@ class Counter {
   /// M diagonal and non-negative is semidefinite for certain; where it is massless K must be definite.
   Status judge_mass(const ModelInput& model) {
     const MassFacts facts = inspect_mass(*model.second);
-    mass_semidefinite_ = facts.diagonal && facts.non_negative;
+    mass_semidefinite_ = mass_diagonal_ = facts.diagonal && facts.non_negative;
     if (facts.massless.empty() || !mass_semidefinite_ || !model.added.empty()) {
       mass_semidefinite_ = mass_semidefinite_ && facts.massless.empty();
       return {};
@@ -182,12 +184,42 @@ class Counter {
       count.level = found->certificate.level;
       count.failure_probability = found->certificate.failure_probability;
     } else {
-      warn("shift-at-eigenvalue",
-           "at shift " + number(shift) + " the count lies between " + std::to_string(count.below_range.first) + " and " +
-               std::to_string(count.below_range.second) +
-               ": an eigenvalue is too close to this shift to tell in double precision. Remedy: move the shift a little");
+      count.holds_outside = band(shift, found->certificate);
+      warn_at_eigenvalue(count, inertia.zero);
     }
     return count;
+  }
+
+  /// The interval around `shift` that must hold the eigenvalues between the two counts: A_s moves by at least mu a
+  /// unit of shift (or kappa a unit of relative factor), and they lie within c + eta of zero.
+  std::optional<std::pair<double, double>> band(double shift, const Certificate& certificate) const {
+    if (!certificate.resolution || !certificate.error_bound) return std::nullopt;
+    const double reach = (*certificate.resolution + *certificate.error_bound) * (1 + 0x1p-50);
+    if (request_.pencil == Pencil::kGeometric) {
+      const double relative = reach / stiffness_bound_ * (1 + 0x1p-50);
+      if (!stiffness_definite_ || !(relative < 1)) return std::nullopt;
+      const double inner = shift / (1 + relative), outer = shift / (1 - relative);
+      return std::pair{widened(std::min(inner, outer), -1), widened(std::max(inner, outer), 1)};
+    }
+    if (!(pencil_->second_matrix_bound() > 0)) return std::nullopt;
+    const double width = reach / pencil_->second_matrix_bound() * (1 + 0x1p-50);
+    return std::pair{widened(shift - width, -1), widened(shift + width, 1)};
+  }
+
+  /// A few units in the last place outwards, for the roundings of the band itself.
+  static double widened(double value, int direction) { return value + direction * std::fabs(value) * 0x1p-50; }
+
+  void warn_at_eigenvalue(const ShiftCount& count, Index many) {
+    std::string text = "at shift " + number(count.shift) + " the count lies between " +
+                       std::to_string(count.below_range.first) + " and " + std::to_string(count.below_range.second);
+    if (count.holds_outside) {
+      const auto [low, high] = *count.holds_outside;
+      text += "; " + std::to_string(many) + (many == 1 ? " eigenvalue lies" : " eigenvalues lie") + " within " +
+              number(std::max(count.shift - low, high - count.shift)) + " of this shift";
+    } else {
+      text += ": an eigenvalue is too close to this shift to tell";
+    }
+    warn("shift-at-eigenvalue", text + ". Remedy: move the shift a little");
   }
 
   Status count_at(double shift) {
@@ -239,7 +271,8 @@ class Counter {
   ThreadPool& pool_;
   Outcome outcome_;
   PreparedPencil* pencil_ = nullptr;
-  bool stiffness_definite_ = false, mass_semidefinite_ = false;
+  bool stiffness_definite_ = false, mass_semidefinite_ = false, mass_diagonal_ = false;
+  double stiffness_bound_ = 0;  ///< S K S is at least this, when certified definite
   Index negative_on_massless_ = 0;
 };
 

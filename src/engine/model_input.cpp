@@ -102,6 +102,7 @@ class ModelReader {
     return remove;
   }
 
+  const std::vector<Index>* original() const { return model_.original.empty() ? nullptr : &model_.original; }
   const DofMap* dof_map() const { return model_.dofs ? &*model_.dofs : nullptr; }
 
   Status strike_equations() {
@@ -133,12 +134,14 @@ class ModelReader {
   }
 
   Status inspect() {
-    auto stiffness = preflight({model_.stiffness, input_.stiffness, MatrixRole::kStiffness, dof_map(), &model_.multipliers});
+    auto stiffness = preflight({model_.stiffness, input_.stiffness, MatrixRole::kStiffness, dof_map(), &model_.multipliers,
+                                original()});
     if (!stiffness.ok()) return stiffness.status();
     append(outcome_.warnings, std::move(stiffness->warnings));
     if (!model_.second) return {};
     const MatrixRole role = input_.mass ? MatrixRole::kMass : MatrixRole::kSecond;
-    auto second = preflight({*model_.second, input_.mass ? *input_.mass : *input_.geometric, role, dof_map(), nullptr});
+    auto second = preflight({*model_.second, input_.mass ? *input_.mass : *input_.geometric, role, dof_map(), nullptr,
+                             original()});
     if (!second.ok()) return second.status();
     append(outcome_.warnings, std::move(second->warnings));
     return {};

@@ -9,6 +9,7 @@
 #include "engine/host.hpp"
 #include "model/not_checked.hpp"
 #include "sparse/product.hpp"
+#include "inertia/witness.hpp"
 #include "sparse/scaling.hpp"
 
 namespace stanchion {
@@ -69,6 +70,8 @@ Outcome begin_outcome(const char* command, const Request& request, Question ques
   outcome.command = command;
   outcome.host = describe_host();
   outcome.not_checked = not_checked(request, question);
+  outcome.risk_allowed = request.risk;
+  outcome.seed = request.seed;
   return outcome;
 }
 
@@ -114,6 +117,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   pencil.scale_ = std::move(*scale);
   pencil.resolution_ = request.resolution;
   pencil.memory_cap_ = request.memory_cap_bytes;
+  pencil.extended_ = request.precision == Precision::kExtended;
   pencil.risk_ = std::make_shared<RiskBudget>(request.risk);
   pencil.seed_ = mixed_seed(request.seed, outcome.inputs);
   pencil.factor_options_.progress = context.progress;
@@ -148,7 +152,8 @@ ShiftedMatrix PreparedPencil::combination(double factor) const {
 
 Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                              Outcome& outcome) {
-  CertifyOptions certify_options{options, risk_.get(), seed_, bytes_for_factor()};
+  CertifyOptions certify_options{options, extended_ ? nullptr : risk_.get(), seed_, bytes_for_factor()};
+  certify_options.offsets.extended = extended_;
   auto certified = certify_inertia(analysis_, matrix, certify_options, pool);
   if (!certified.ok()) return certified.status();
   outcome.risk = risk_->spent();
@@ -179,7 +184,46 @@ Result<CertifiedInertia> PreparedPencil::certify_second(ThreadPool& pool, Outcom
   OffsetOptions options;
   options.definite_first = true;
   options.factor = factor_options_;
-  return run(matrix, options, pool, outcome);
+  auto found = run(matrix, options, pool, outcome);
+  if (!found.ok() || !found->certificate.smallest_eigenvalue_above) return found;
+  // S M S = (S S'^-1) (S' M S') (S'^-1 S) >= min (s_i / s'_i)^2 mu' I; the ratios are powers of two.
+  double least = INFINITY;
+  for (Index i = 0; i < family_.rows; ++i) least = std::min(least, scale_[i] / (*scale)[i]);
+  second_bound_ = *found->certificate.smallest_eigenvalue_above * least * least;
+  return found;
+}
+
+void PreparedPencil::set_second_bound_from_diagonal() {
+  const Buffer<double>& second = family_.values.back();
+  second_bound_ = INFINITY;
+  for (Index j = 0; j < family_.rows; ++j) {
+    for (Offset k = family_.column_start[j]; k < family_.column_start[Offset{j} + 1]; ++k) {
+      if (family_.row[k] == j) second_bound_ = std::min(second_bound_, second[k] * scale_[j] * scale_[j]);
+    }
+  }
+}
+
+Result<std::optional<Witness>> PreparedPencil::find_witness(const std::vector<Index>& original, Index file_rows,
+                                                            ThreadPool& pool, Outcome& outcome) {
+  FactorOptions options = factor_options_;
+  options.keep_factor = true;
+  const ShiftedMatrix matrix = combination(0);
+  auto factorization = factorize(analysis_, matrix, options, pool);
+  if (!factorization.ok()) return factorization.status();
+  if (Status sound = check_fault(analysis_, *factorization); !sound.ok()) return sound;
+  ++outcome.work.factorizations;
+  outcome.timings.factor += factorization->seconds;
+  if (factorization->breakdown) return std::optional<Witness>{};
+  const auto direction = find_negative_direction(analysis_, matrix, *factorization, pool);
+  if (!direction) return std::optional<Witness>{};
+  Witness witness{std::vector<double>(static_cast<std::size_t>(file_rows), 0.0), direction->quadratic_form,
+                  direction->error_bound};
+  for (Index p = 0; p < analysis_.tree.rows; ++p) {
+    const Index equation = analysis_.tree.equation_at[p];
+    const Index in_file = original.empty() ? equation : original[static_cast<std::size_t>(equation)];
+    witness.x[static_cast<std::size_t>(in_file)] = direction->x[static_cast<std::size_t>(p)];
+  }
+  return std::optional<Witness>(std::move(witness));
 }
 
 double PreparedPencil::digits_error(double factor, int digits) const {

@@ -27,6 +27,16 @@ class PreparedPencil {
   Result<CertifiedInertia> certify(double factor, bool definite_first, double data_error, ThreadPool& pool,
                                    Outcome& outcome);
 
+  /// A vector x with x^T A x < 0 beyond its rounding, A = K with what is added; nothing when none is found. Its entries
+  /// are placed by `original` (see ModelInput) among `file_rows` equations. Keeps a factor for the while.
+  Result<std::optional<Witness>> find_witness(const std::vector<Index>& original, Index file_rows, ThreadPool& pool,
+                                              Outcome& outcome);
+
+  /// mu with S (second) S >= mu I, S the pencil's scaling, from a certified bound for the second matrix under its own
+  /// scaling; 0 when nothing follows. For K alone the second matrix is I.
+  double second_matrix_bound() const { return second_bound_; }
+  void set_second_bound_from_diagonal();
+
   /// The second matrix alone.
   Result<CertifiedInertia> certify_second(ThreadPool& pool, Outcome& outcome);
 
@@ -46,7 +56,8 @@ class PreparedPencil {
   MatrixFamily family_;
   Buffer<double> scale_;
   std::vector<double> added_factors_;
-  bool has_second_ = false;
+  bool has_second_ = false, extended_ = false;
+  double second_bound_ = 0;
   std::optional<double> resolution_;
   std::optional<Offset> memory_cap_;
   FactorOptions factor_options_;

@@ -13,10 +13,10 @@ struct CertifyOptions {
   Offset most_factor_bytes = 0;     ///< memory that keeping a factor may take
 };
 
-/// Definite expected: one factorization with an offset, without pivoting, is the cheapest proof. Otherwise, and when
-/// that fails, the relative test (one factorization, kept) where memory and risk allow; then the two offsets, which
-/// also answer for singular matrices, at a resolution. Whatever is certified first is returned. Errors: those of the
-/// methods.
+/// Definite expected: one factorization with an offset, without pivoting, is the cheapest proof. Otherwise the two
+/// offsets where their second factorization is cheap, else the relative test (one factorization, kept) where memory and
+/// risk allow. What leaves zero directions escalates to the other; the offsets have the last word, at a resolution.
+/// Errors: those of the methods.
 Result<CertifiedInertia> certify_inertia(const Analysis& analysis, const ShiftedMatrix& matrix,
                                          const CertifyOptions& options, ThreadPool& pool);
 

@@ -10,14 +10,13 @@
 #include "base/clock.hpp"
 #include "base/counter_random.hpp"
 #include "numeric/block_solve.hpp"
-#include "sparse/product.hpp"
+#include "numeric/extended_product.hpp"
 
 namespace stanchion {
 namespace {
 
 constexpr Index kV = kBlockVectors;
 constexpr double kUnit = 0x1p-53;
-constexpr Index kProductRanges = 2;  ///< column ranges of the extended product, each with sums of its own
 
 using Norms = std::array<double, kV>;
 
@@ -94,7 +93,8 @@ class RelativeTest {
     draw(key);
     std::vector<double> y = transposed_solve();
     const Norms y_norm = column_norms(y);
-    std::vector<double> z = extended_times(y);
+    std::vector<double> z(y.size());
+    extended_times(matrix_, y.data(), z.data(), pool_);
     const Norms b_norm = column_norms(z);
     solve(z);
     const Norms z_norm = column_norms(z);
@@ -187,50 +187,6 @@ class RelativeTest {
     });
   }
 
-  /// b = A_s y, rounded once from double-double; the scaling and the offset are exact powers or one more term.
-  std::vector<double> extended_times(const std::vector<double>& y) {
-    const MatrixFamily& family = *matrix_.family;
-    std::vector<double> scaled(y);
-    for (std::size_t i = 0; i < rows_; ++i) {
-      for (std::size_t v = 0; v < kV; ++v) scaled[i * kV + v] *= (*matrix_.scale)[static_cast<Offset>(i)];
-    }
-    std::vector<const double*> members;
-    for (const Buffer<double>& values : family.values) members.push_back(values.data());
-    const DataColumns data{family.column_start.data(), family.row.data(), members.data(), matrix_.coefficients.data(),
-                           static_cast<Index>(members.size())};
-    std::array<std::vector<double>, kProductRanges> high, low;
-    const std::array<Index, kProductRanges + 1> ends = equal_ranges(family);
-    pool_.run(kProductRanges, [&](Offset range, int) {
-      const auto r = static_cast<std::size_t>(range);
-      high[r].assign(rows_ * kV, 0.0);
-      low[r].assign(rows_ * kV, 0.0);
-      block_kernels().extended_product(data, ends[r], ends[r + 1], scaled.data(), high[r].data(), low[r].data());
-    });
-    std::vector<double> b(rows_ * kV);
-    for (std::size_t k = 0; k < b.size(); ++k) {
-      const double sum = high[0][k] + high[1][k], t = sum - high[0][k];
-      const double error = (high[0][k] - (sum - t)) + (high[1][k] - t);
-      const double shift = matrix_.offset * y[k], shift_error = std::fma(matrix_.offset, y[k], -shift);
-      const double scale = (*matrix_.scale)[static_cast<Offset>(k / kV)];
-      const double head = sum * scale, tail = (error + (low[0][k] + low[1][k])) * scale - shift_error;
-      const double total = head - shift, u = total - head;
-      b[k] = total + (tail + ((head - (total - u)) + (-shift - u)));
-    }
-    return b;
-  }
-
-  /// Column ranges with about the same number of entries; the same whatever the number of threads.
-  std::array<Index, kProductRanges + 1> equal_ranges(const MatrixFamily& family) const {
-    std::array<Index, kProductRanges + 1> ends{};
-    for (Index r = 1; r < kProductRanges; ++r) {
-      const Offset target = family.entries() / kProductRanges * r;
-      const Offset* at = std::lower_bound(family.column_start.begin(), family.column_start.end(), target);
-      ends[static_cast<std::size_t>(r)] = std::min(static_cast<Index>(at - family.column_start.begin()), family.rows);
-    }
-    ends[kProductRanges] = family.rows;
-    return ends;
-  }
-
   /// v = z - J w.
   void combine(std::vector<double>& z) {
     each_pivot(factor_, [&](const PivotRoot& root, Index first, Index second) {
@@ -243,9 +199,9 @@ class RelativeTest {
   void judge(RelativeResult& result, double g, const Norms& y, const Norms& b, const Norms& z, const Norms& v) {
     const double gamma = 1.01 * kUnit * (solver_.longest_path() + 16);
     const double m_norm = std::sqrt(root_growth());  // || |M| ||_2
-    const auto [data_norm, longest_row] = absolute_norm();
+    const AbsoluteNorm data = absolute_norm(matrix_);
     // Every term of a row of A_s y: its coefficient, product, addition; then the joining of the ranges.
-    const double product_error = 8 * static_cast<double>(longest_row + 8) * kUnit * kUnit * data_norm;
+    const double product_error = 8 * static_cast<double>(data.longest_row + 8) * kUnit * kUnit * data.norm;
     double h_most = 0, y_most = 0;
     for (std::size_t i = 0; i < kV; ++i) {
       h_most = std::max(h_most, gamma * m_norm * y[i]);
@@ -268,30 +224,6 @@ class RelativeTest {
     }
     result.relative_bound = std::isnan(bound) ? INFINITY : bound * 1.001;
     result.certified = result.relative_bound < 1;
-  }
-
-  /// || sum_t |c_t| S |A_t| S + |offset| I ||_inf, and the most entries of a row.
-  std::pair<double, Offset> absolute_norm() const {
-    const MatrixFamily& family = *matrix_.family;
-    std::vector<double> sums(rows_, std::fabs(matrix_.offset));
-    std::vector<Offset> terms(rows_, 0);
-    for (Index j = 0; j < family.rows; ++j) {
-      for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-        double size = 0;
-        for (std::size_t t = 0; t < matrix_.coefficients.size(); ++t) {
-          size += std::fabs(matrix_.coefficients[t] * family.values[t][k]);
-        }
-        const Index i = family.row[k];
-        size *= (*matrix_.scale)[i] * (*matrix_.scale)[j];
-        sums[static_cast<std::size_t>(i)] += size;
-        ++terms[static_cast<std::size_t>(i)];
-        if (i == j) continue;
-        sums[static_cast<std::size_t>(j)] += size;
-        ++terms[static_cast<std::size_t>(j)];
-      }
-    }
-    if (sums.empty()) return {0, 0};
-    return {*std::max_element(sums.begin(), sums.end()) * 1.001, *std::max_element(terms.begin(), terms.end())};
   }
 
   const ShiftedMatrix& matrix_;

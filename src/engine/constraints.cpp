@@ -1,0 +1,151 @@
+#include "engine/constraints.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <map>
+
+namespace stanchion {
+namespace {
+
+/// One row of B: columns ascending, with their values.
+using ConstraintRow = std::vector<std::pair<Index, double>>;
+
+struct ConstraintRows {
+  std::vector<ConstraintRow> rows;  ///< one per multiplier
+  bool bordered = true;
+};
+
+ConstraintRows extract_rows(const SymmetricMatrix& matrix, const std::vector<Index>& multipliers) {
+  std::vector<Index> number_of(static_cast<std::size_t>(matrix.rows), -1);
+  for (std::size_t m = 0; m < multipliers.size(); ++m) {
+    number_of[static_cast<std::size_t>(multipliers[m])] = static_cast<Index>(m);
+  }
+  ConstraintRows found{std::vector<ConstraintRow>(multipliers.size()), true};
+  for (Index j = 0; j < matrix.rows; ++j) {
+    const Index mj = number_of[static_cast<std::size_t>(j)];
+    for (Offset k = matrix.column_start[j]; k < matrix.column_start[Offset{j} + 1]; ++k) {
+      const Index i = matrix.row[k], mi = number_of[static_cast<std::size_t>(i)];
+      if (matrix.value[k] == 0 || (mi < 0 && mj < 0)) continue;
+      if (mi >= 0 && mj >= 0) {
+        found.bordered = false;
+      } else {
+        found.rows[static_cast<std::size_t>(mi >= 0 ? mi : mj)].emplace_back(mi >= 0 ? j : i, matrix.value[k]);
+      }
+    }
+  }
+  for (ConstraintRow& row : found.rows) std::sort(row.begin(), row.end());
+  return found;
+}
+
+/// True when `b` is exactly a multiple of `a` by a power of two or minus one: a ratio that doubles hold without error.
+bool exact_multiple(const ConstraintRow& a, const ConstraintRow& b) {
+  if (a.size() != b.size()) return false;
+  const double ratio = b.front().second / a.front().second;
+  for (std::size_t k = 0; k < a.size(); ++k) {
+    // ratio * a is exact when it rounds to b and dividing back gives a: both directions must reproduce.
+    if (a[k].first != b[k].first || a[k].second * ratio != b[k].second || std::fma(a[k].second, ratio, -b[k].second) != 0) {
+      return false;
+    }
+  }
+  return true;
+}
+
+/// Marks empty rows and exact multiples of earlier rows.
+std::vector<char> repeated_rows(const std::vector<ConstraintRow>& rows) {
+  std::vector<char> repeated(rows.size(), 0);
+  std::map<std::vector<Index>, std::vector<std::size_t>> same_columns;
+  for (std::size_t m = 0; m < rows.size(); ++m) {
+    if (rows[m].empty()) {
+      repeated[m] = 1;
+      continue;
+    }
+    std::vector<Index> columns;
+    for (const auto& [column, value] : rows[m]) columns.push_back(column);
+    auto& earlier = same_columns[columns];
+    for (const std::size_t other : earlier) repeated[m] = repeated[m] || exact_multiple(rows[other], rows[m]);
+    if (!repeated[m]) earlier.push_back(m);
+  }
+  return repeated;
+}
+
+/// [I B^T; B 0] on the rows kept and the columns they touch.
+SymmetricMatrix bordered_identity(const std::vector<ConstraintRow>& rows, const std::vector<char>& repeated) {
+  std::map<Index, Index> column_number;
+  for (std::size_t m = 0; m < rows.size(); ++m) {
+    if (repeated[m]) continue;
+    for (const auto& [column, value] : rows[m]) {
+      column_number.try_emplace(column, static_cast<Index>(column_number.size()));
+    }
+  }
+  std::vector<Triplet> entries;
+  const auto columns = static_cast<Index>(column_number.size());
+  for (Index c = 0; c < columns; ++c) entries.push_back({c, c, 1});
+  Index next = columns;
+  for (std::size_t m = 0; m < rows.size(); ++m) {
+    if (repeated[m]) continue;
+    for (const auto& [column, value] : rows[m]) entries.push_back({next, column_number[column], value});
+    ++next;
+  }
+  return from_triplets(next, entries);
+}
+
+}  // namespace
+
+Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness, const std::vector<Index>& multipliers,
+                                               const Request& request, const RunContext& context, ThreadPool& pool,
+                                               Outcome& outcome) {
+  ConstraintRank rank;
+  rank.multipliers = static_cast<Index>(multipliers.size());
+  const ConstraintRows constraints = extract_rows(stiffness, multipliers);
+  rank.bordered = constraints.bordered;
+  if (!rank.bordered) return rank;
+  const std::vector<char> repeated = repeated_rows(constraints.rows);
+  for (std::size_t m = 0; m < multipliers.size(); ++m) {
+    if (repeated[m]) rank.repeated.push_back(multipliers[m]);
+  }
+  const Index distinct = rank.multipliers - static_cast<Index>(rank.repeated.size());
+  if (distinct == 0) return rank;
+  ModelInput bordered;
+  bordered.stiffness = bordered_identity(constraints.rows, repeated);
+  Outcome own = outcome;  // the document's digests key the random vectors; times and work are added below
+  auto pencil = PreparedPencil::make(bordered, false, request, context, pool, own);
+  if (!pencil.ok()) return pencil.status();
+  auto found = pencil->certify(0, false, 0, pool, own);
+  if (!found.ok()) return found.status();
+  outcome.work.factorizations += found->factorizations;
+  outcome.timings.factor += found->seconds;
+  if (found->certificate.level == Level::kNone) {
+    rank.least = 0;
+    rank.most = distinct;
+    return rank;
+  }
+  // n-([I B^T; B 0]) = rank(B): every zero direction may be one more.
+  rank.least = found->inertia.negative;
+  rank.most = std::min(distinct, found->inertia.negative + found->inertia.zero);
+  return rank;
+}
+
+ConstrainedOutcome judge_on_constraints(const Inertia& inertia, Level level, const ConstraintRank& rank,
+                                        const std::vector<Index>& original) {
+  ConstrainedOutcome outcome;
+  outcome.multipliers = rank.multipliers;
+  for (const Index equation : rank.repeated) {
+    outcome.redundant_equations.push_back((original.empty() ? equation : original[static_cast<std::size_t>(equation)]) + 1);
+  }
+  if (level == Level::kNone || !rank.bordered) return outcome;
+  const Index q = rank.multipliers;
+  // A without zero directions has independent constraints, whatever B's own certificate could say.
+  const bool independent = inertia.zero == 0;
+  const Index least = independent ? q : rank.least, most = independent ? q : rank.most;
+  if (least == most) {
+    outcome.rank = least;
+    outcome.redundant = q - least;
+    outcome.inertia = Inertia{inertia.negative - least, inertia.zero - (q - least), inertia.positive - least, 0};
+    return outcome;
+  }
+  outcome.negative_range = {std::max<Index>(0, inertia.negative - q),
+                            std::max<Index>(0, inertia.negative - q + inertia.zero)};
+  return outcome;
+}
+
+}  // namespace stanchion

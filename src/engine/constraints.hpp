@@ -1,0 +1,29 @@
+// Saddle point matrices [K B^T; B 0]: the rank of the constraints B, and the structure on them.
+#pragma once
+
+#include <vector>
+
+#include "engine/prepared_pencil.hpp"
+
+namespace stanchion {
+
+/// What is known of the rank of B, from a factorization of [I B^T; B 0] of its own.
+struct ConstraintRank {
+  Index multipliers = 0;          ///< q
+  Index least = 0, most = 0;      ///< the rank lies between; equal when known
+  std::vector<Index> repeated;    ///< equations of multipliers whose row of B is an exact multiple of an earlier one
+  bool bordered = true;           ///< false: multipliers act on each other, the theory below does not apply
+};
+
+/// Certifies the rank of the constraint rows. Exact multiples of earlier rows are found and set aside first, for no
+/// factorization in floating point can prove a matrix rank deficient. `stiffness` is the whole matrix A.
+Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness, const std::vector<Index>& multipliers,
+                                               const Request& request, const RunContext& context, ThreadPool& pool,
+                                               Outcome& outcome);
+
+/// In(A) = In(Z^T K Z) + (p, p, q - p), p = rank(B), Z a basis of null(B) (Gould, Math. Program. 32 (1985); Haynsworth,
+/// Linear Algebra Appl. 1 (1968)). With p known only as a range, so is the answer. `original`: see ModelInput.
+ConstrainedOutcome judge_on_constraints(const Inertia& inertia, Level level, const ConstraintRank& rank,
+                                        const std::vector<Index>& original);
+
+}  // namespace stanchion
