@@ -40,8 +40,12 @@ void declare_model_files(Arguments& arguments, RequestOptions& options) {
                  "strike out held equations stamped with a diagonal only");
 }
 
-void declare_numbers(Arguments& arguments, RequestOptions& options) {
+void declare_numbers(Arguments& arguments, RequestOptions& options, Question question) {
   arguments.group("Certificate");
+  if (question != Question::kForecast) {
+    arguments.text("--precision", options.precision, "double|extended",
+                   "extended: factor in double-double, slow, for what double cannot tell apart");
+  }
   arguments.real("--resolution", options.resolution, "c",
                  "what counts as zero, in units of the scaled matrix");
   arguments.real("--risk", options.risk, "p", "accepted failure probability of the document (default 1e-6)");
@@ -106,6 +110,13 @@ Status fill_numbers(const RequestOptions& options, Request& request) {
     }
     request.seed = static_cast<std::uint64_t>(*options.seed);
   }
+  if (options.precision) {
+    if (*options.precision != "double" && *options.precision != "extended") {
+      return Status::bad_usage("bad-precision", fmt::format("'{}' is neither double nor extended", *options.precision),
+                               "--precision", "leave it out for double precision, or ask for extended");
+    }
+    request.precision = *options.precision == "extended" ? Precision::kExtended : Precision::kDouble;
+  }
   request.resolution = options.resolution;
   if (options.risk) request.risk = *options.risk;
   if (options.memory_cap) {
@@ -159,7 +170,7 @@ void declare_request_options(Arguments& arguments, RequestOptions& options, Ques
                     "where to count (may be repeated; negative ones too)");
   }
   declare_model_files(arguments, options);
-  declare_numbers(arguments, options);
+  declare_numbers(arguments, options, question);
 }
 
 Result<Request> build_request(const RequestOptions& options, Question question) {

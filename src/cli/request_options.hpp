@@ -15,7 +15,7 @@ namespace stanchion::cli {
 
 struct RequestOptions {
   std::optional<std::string> stiffness, geometric, mass, dofs, nodes, axes, fix, multipliers;
-  std::optional<std::string> load_sign, memory_cap;
+  std::optional<std::string> load_sign, memory_cap, precision;
   std::vector<std::string> added, shifts;
   std::optional<std::int64_t> base, rows, digits, threads, seed;
   std::optional<double> resolution, risk;

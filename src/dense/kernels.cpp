@@ -1,5 +1,7 @@
 #include "dense/kernels.hpp"
 
+#include <atomic>
+
 namespace stanchion {
 namespace isa_generic {
 extern const Kernels table;
@@ -25,12 +27,17 @@ const Kernels& choose() {
   return has_avx2() ? isa_avx2::table : isa_generic::table;
 }
 
+/// The one choice of the process.
+std::atomic<const Kernels*>& chosen() {
+  static std::atomic<const Kernels*> set{&choose()};
+  return set;
+}
+
 }  // namespace
 
-const Kernels& kernels() {
-  static const Kernels& chosen = choose();
-  return chosen;
-}
+const Kernels& kernels() { return *chosen().load(std::memory_order_relaxed); }
+
+void use_reference_kernels() { chosen().store(&isa_generic::table, std::memory_order_relaxed); }
 
 const Kernels& reference_kernels() { return isa_generic::table; }
 

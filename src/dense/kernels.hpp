@@ -75,8 +75,11 @@ constexpr Index signed_sum_depth(Index rows) { return rows / 8 + 11; }
 /// Additions to one row by add_growth_and_image.
 constexpr Index image_additions(Index columns) { return columns / 4 + columns % 4; }
 
-/// The best set this processor can run. Thread safe.
+/// The best set this processor can run, or what use_reference_kernels() chose. Thread safe.
 const Kernels& kernels();
+
+/// From now on kernels() is the reference set: for repeating a claim by other code. Call before any other work.
+void use_reference_kernels();
 
 /// The plain reference set, always available; the tests hold the others against it.
 const Kernels& reference_kernels();

@@ -102,7 +102,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   SymmetricMatrix pattern{family.rows, std::move(family.column_start), std::move(family.row),
                           std::move(family.values[0])};
   const std::vector<Index> nodes = nodes_of(model.dofs, family.rows);
-  auto analysis = analyse({&pattern, nodes, true}, pool.size());
+  auto analysis = analyse({&pattern, nodes, true, request.second_path}, pool.size());
   if (!analysis.ok()) return analysis.status();
   if (context.cancel != nullptr && context.cancel->cancelled()) return Status::interrupted();
   pencil.analysis_ = std::move(*analysis);

@@ -40,9 +40,9 @@ struct PartOrder {
   bool dissected = false;
 };
 
-Result<PartOrder> order_part(const Graph& part) {
+Result<PartOrder> order_part(const Graph& part, bool other_order) {
   const double degree = static_cast<double>(part.adjacency.size()) / std::max<double>(1, part.vertices);
-  const bool dissect = part.vertices > kDissectAbove;
+  const bool dissect = part.vertices > kDissectAbove && !other_order;
   const bool minimum = !dissect || part.vertices <= kTryBothUpTo || degree <= kThinDegree;
   PartOrder best;
   if (minimum) {
@@ -82,7 +82,8 @@ Grouping intersect(const Grouping& coarse, const Grouping& fine) {
 }
 
 /// Orders each connected part of `graph` and strings the parts together.
-Result<Buffer<Index>> order_parts(const Graph& graph, const Components& components, Index& dissected) {
+Result<Buffer<Index>> order_parts(const Graph& graph, const Components& components, bool other_order,
+                                  Index& dissected) {
   std::vector<std::vector<Index>> members(static_cast<std::size_t>(components.count));
   Buffer<Index> local(graph.vertices);
   for (Index v = 0; v < graph.vertices; ++v) {
@@ -97,7 +98,7 @@ Result<Buffer<Index>> order_parts(const Graph& graph, const Components& componen
       vertex_at[used++] = list.front();
       continue;
     }
-    auto part = order_part(subgraph(graph, local, list.data(), static_cast<Index>(list.size())));
+    auto part = order_part(subgraph(graph, local, list.data(), static_cast<Index>(list.size())), other_order);
     if (!part.ok()) return part.status();
     dissected += part->dissected ? 1 : 0;
     for (const Index v : part->vertex_at) vertex_at[used++] = list[static_cast<std::size_t>(v)];
@@ -132,7 +133,7 @@ Result<Elimination> order_equations(const OrderingInput& input) {
   Graph coarse_graph = quotient_graph(pattern, coarse);
   const Components components = connected_components(coarse_graph);
   elimination.components = components.count;
-  auto coarse_order = order_parts(coarse_graph, components, elimination.dissected);
+  auto coarse_order = order_parts(coarse_graph, components, input.other_order, elimination.dissected);
   if (!coarse_order.ok()) return coarse_order.status();
   if (!nodes_known && !joins) {
     elimination.graph = std::move(coarse_graph);

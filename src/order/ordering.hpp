@@ -13,6 +13,7 @@ struct OrderingInput {
   const SymmetricMatrix* pattern = nullptr;  ///< union pattern of the pencil; values: any representative
   std::span<const Index> node_of;            ///< node number per equation (negative: none); empty: unknown
   bool zero_diagonals_join = true;           ///< keep multipliers next to a partner
+  bool other_order = false;                  ///< minimum degree everywhere: a second opinion, not the fastest
 };
 
 /// The elimination order on the graph of equations with identical structure.
