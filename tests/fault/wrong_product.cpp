@@ -58,6 +58,9 @@ void spoil(const Product& product, std::uint64_t seed) {
     case Wrong::kNudged:
       entry *= 1 + 0x1p-20;
       break;
+    case Wrong::kShifted:
+      entry += 0x1p-30;
+      break;
     case Wrong::kFlippedBit:
       entry = std::bit_cast<double>(std::bit_cast<std::uint64_t>(entry) ^ (std::uint64_t{1} << below(3, 64)));
       break;

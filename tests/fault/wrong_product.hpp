@@ -10,6 +10,7 @@ enum class Wrong {
   kNothing,
   kDroppedTerm,  ///< one entry of the product misses one of its terms
   kNudged,       ///< one entry is off by a relative 2^-20
+  kShifted,      ///< one entry is off by 2^-30 of one
   kFlippedBit,   ///< one bit of one entry is flipped
 };
 
