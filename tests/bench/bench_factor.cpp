@@ -40,6 +40,7 @@ void factor_once(const Analysis& analysis, const ShiftedMatrix& matrix, const Be
   record.valid = !f.breakdown && !f.stopped;
   record.definite = record.valid && f.signs.positive == analysis.tree.rows;
   record.error_bound = f.error_bound;
+  record.numeric_peak_bytes = f.peak_bytes;
 }
 
 /// The proved answer, with as many factorizations as it takes.
@@ -54,6 +55,7 @@ void certify(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchA
   record.valid = found.certificate.level == Level::kProved && found.inertia.zero == 0;
   record.definite = found.inertia.positive == analysis.tree.rows;
   record.error_bound = found.certificate.error_bound;
+  record.numeric_peak_bytes = found.peak_bytes;
 }
 
 BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& arguments, ThreadPool& pool) {

@@ -40,6 +40,7 @@ void print_record(const BenchArguments& arguments, int repetition, const BenchRe
   line["definite"] = record.definite;
   line["valid"] = record.valid;
   if (record.error_bound) line["error_bound"] = *record.error_bound;
+  if (record.numeric_peak_bytes) line["numeric_peak_bytes"] = *record.numeric_peak_bytes;
   line["highest_resident_bytes"] = record.highest_resident;
   line["increase_over_matrix_bytes"] = record.highest_resident - record.resident_before;
   std::printf("%s\n", line.dump().c_str());

@@ -28,8 +28,9 @@ struct BenchRecord {
   bool definite = false;
   bool valid = true;  ///< false: stopped, broke down or reported an error
   std::optional<double> error_bound;
-  Offset resident_before = 0;   ///< matrix held, nothing analysed
-  Offset highest_resident = 0;  ///< of this repetition
+  std::optional<Offset> numeric_peak_bytes;  ///< of the numeric phase alone, as the program itself books it
+  Offset resident_before = 0;                ///< matrix held, nothing analysed
+  Offset highest_resident = 0;               ///< of this repetition
 };
 
 /// Prints the record and the arguments as one line on standard output.

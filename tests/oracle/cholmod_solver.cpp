@@ -52,7 +52,7 @@ PeerStructure CholmodSolver::analyse(std::span<const Index> order) {
     s.factor = cholmod_analyze_p(&s.matrix, permutation.data(), nullptr, 0, &s.common);
   }
   return {s.factor != nullptr && s.common.status == CHOLMOD_OK, static_cast<Offset>(s.common.lnz),
-          s.common.fl};
+          s.common.fl, order.empty() ? "METIS" : "given"};
 }
 
 PeerFactorization CholmodSolver::factor() {
