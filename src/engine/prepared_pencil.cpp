@@ -6,6 +6,8 @@
 
 #include "base/clock.hpp"
 #include "base/counter_random.hpp"
+#include "dense/blas.hpp"
+#include "dense/selftest.hpp"
 #include "engine/host.hpp"
 #include "model/not_checked.hpp"
 #include "sparse/product.hpp"
@@ -49,6 +51,9 @@ std::uint64_t mixed_seed(std::uint64_t seed, const std::vector<InputRecord>& inp
   }
   return seed;
 }
+
+/// A job of some seconds: the arithmetic is tried before it, for some tens of milliseconds.
+constexpr double kLongJobFlops = 5e10;
 
 std::string mebibytes(Offset bytes) { return std::to_string((bytes + (1 << 20) - 1) >> 20) + " MiB"; }
 
@@ -133,6 +138,11 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   const Offset resident = resident_bytes();
   outcome.memory.forecast = std::max(peak_resident_bytes(), resident + forecast.peak_bytes_count);
   if (Status fits = check_cap(request, outcome.memory.forecast); !fits.ok()) return fits;
+  if (forecast.factor_flops > kLongJobFlops && context.progress) context.progress("self-test", 0);
+  if (forecast.factor_flops > kLongJobFlops) {
+    use_single_threaded_blas();
+    if (Status sound = arithmetic_selftest(SelftestLevel::kQuick); !sound.ok()) return sound;
+  }
   if (request.memory_cap_bytes) pencil.factor_options_.memory_cap_bytes = *request.memory_cap_bytes - resident;
   return pencil;
 }

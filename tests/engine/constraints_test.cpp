@@ -1,0 +1,65 @@
+#include "engine/model_files.hpp"
+#include "support/generators.hpp"
+
+namespace stanchion {
+namespace {
+
+using namespace test;
+
+Outcome check_with_multipliers(const SymmetricMatrix& matrix, Index first_multiplier) {
+  ModelFiles files;
+  Request request;
+  request.input.stiffness = files.matrix("A.mtx", matrix);
+  std::string list;
+  for (Index i = first_multiplier; i < matrix.rows; ++i) list += std::to_string(i + 1) + "\n";
+  request.input.multipliers = files.text("multipliers.txt", list);
+  return answer(run_check(request, {}));
+}
+
+TEST(Constraints, RepeatedConstraintCountsByRankNotByNumber) {
+  // K = diag(-1, 1), B = [0 1; 0 1]: n-(A) = 2, rank 1, one negative direction (certificate by hand).
+  const Outcome outcome =
+      check_with_multipliers(from_triplets(4, {{0, 0, -1}, {1, 1, 1}, {2, 1, 1}, {3, 1, 1}}), 2);
+  const ConstrainedOutcome& on = *outcome.check->constrained;
+  EXPECT_EQ(on.rank, 1);
+  EXPECT_EQ(on.redundant, 1);
+  EXPECT_EQ(on.redundant_equations, std::vector<Index>{4});
+  ASSERT_TRUE(on.inertia);
+  EXPECT_EQ(on.inertia->negative, 1);
+  EXPECT_EQ(on.inertia->zero, 0);
+  EXPECT_EQ(on.inertia->positive, 0);
+}
+
+TEST(Constraints, IndependentOnesNeedNoMore) {
+  Random random(3);
+  const Outcome outcome = check_with_multipliers(saddle(random, 120, 30), 120);
+  EXPECT_EQ(outcome.check->constrained->rank, 30);
+  ASSERT_TRUE(outcome.check->constrained->inertia);
+  EXPECT_EQ(outcome.check->constrained->inertia->negative, 0);
+  EXPECT_EQ(outcome.check->constrained->inertia->positive, 90);
+}
+
+TEST(Constraints, AnExactMultipleIsRedundantASumIsOnlyARange) {
+  std::vector<Triplet> entries;
+  for (Index i = 0; i < 6; ++i) entries.push_back({i, i, 1});
+  entries.insert(entries.end(), {{6, 0, 1}, {6, 1, -1}, {7, 0, -2}, {7, 1, 2}});  // row 7 is -2 times row 6
+  const Outcome multiple = check_with_multipliers(from_triplets(8, entries), 6);
+  EXPECT_EQ(multiple.check->constrained->rank, 1);
+  EXPECT_EQ(multiple.check->constrained->inertia->positive, 5);
+  entries.insert(entries.end(), {{8, 1, 1}, {8, 2, -1}, {9, 0, 1}, {9, 2, -1}});  // row 9 = row 6 + row 8
+  const Outcome sum = check_with_multipliers(from_triplets(10, entries), 6);
+  EXPECT_FALSE(sum.check->constrained->rank);
+  ASSERT_TRUE(sum.check->constrained->negative_range);
+  EXPECT_LE(sum.check->constrained->negative_range->first, 0);
+  EXPECT_GE(sum.check->constrained->negative_range->second, 0);
+}
+
+TEST(Constraints, MultipliersThatActOnEachOtherAreNotJudged) {
+  const Outcome outcome =
+      check_with_multipliers(from_triplets(3, {{0, 0, 2}, {1, 0, 1}, {2, 0, 1}, {2, 1, 1}}), 1);
+  EXPECT_TRUE(warned(outcome, "multipliers-coupled"));
+  EXPECT_FALSE(outcome.check->constrained->inertia);
+}
+
+}  // namespace
+}  // namespace stanchion
