@@ -33,6 +33,7 @@ Json json_of(const OffsetRun& run);
 Json json_of(const Certificate& certificate);
 Json json_of(const ConstrainedOutcome& constrained);
 Json json_of(const ShiftCount& count);
+Json json_of(const Witness& witness);
 Json json_of(const Warning& warning);
 
 template <class T>
@@ -83,7 +84,14 @@ Json json_of(const ConstrainedOutcome& constrained) {
           {"rank", json_of(constrained.rank)},
           {"redundant", json_of(constrained.redundant)},
           {"inertia", json_of(constrained.inertia)},
-          {"negative_range", json_of(constrained.negative_range)}};
+          {"negative_range", json_of(constrained.negative_range)},
+          {"redundant_equations", json_of(constrained.redundant_equations)}};
+}
+
+Json json_of(const Witness& witness) {
+  return {{"quadratic_form", json_of(witness.quadratic_form)},
+          {"error_bound", json_of(witness.error_bound)},
+          {"x", json_of(witness.x)}};
 }
 
 Json json_of(const ShiftCount& count) {
@@ -170,6 +178,7 @@ void add_answer(Json& document, const Outcome& outcome) {
     document["inertia"] = json_of(check.inertia);
     document["certificate"] = json_of(check.certificate);
     document["constrained"] = json_of(check.constrained);
+    document["witness"] = json_of(check.witness);
   }
   if (outcome.count) {
     document["counts"] = json_of(outcome.count->counts);
@@ -184,6 +193,8 @@ std::string to_json(const Outcome& outcome) {
   Json document = common_part(outcome);
   add_answer(document, outcome);
   document["risk"] = json_of(outcome.risk);
+  document["risk_allowed"] = json_of(outcome.risk_allowed);
+  document["seed"] = outcome.seed;
   document["warnings"] = json_of(outcome.warnings);
   document["not_checked"] = json_of(outcome.not_checked);
   document["work"] = json_of(outcome.work);

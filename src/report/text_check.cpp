@@ -1,5 +1,7 @@
 #include <fmt/format.h>
 
+#include <algorithm>
+
 #include "report/numbers.hpp"
 #include "report/text_sections.hpp"
 
@@ -17,25 +19,34 @@ std::string directions(const Inertia& inertia) {
                      counted(inertia.zero, "zero direction"));
 }
 
-/// Every matrix analysed is called K here, also a sum with added ones: the inputs below list its parts.
-std::string verdict_sentence(const CheckOutcome& check, Index rows) {
+/// "K", or the sum that was judged.
+std::string subject(const Outcome& outcome) {
+  const auto added = std::count_if(outcome.inputs.begin(), outcome.inputs.end(),
+                                   [](const InputRecord& input) { return input.role == "added"; });
+  return added == 0 ? "K"
+                    : fmt::format("The sum of K and {}",
+                                  added == 1 ? "the added matrix" : fmt::format("{} added matrices", added));
+}
+
+std::string verdict_sentence(const CheckOutcome& check, const std::string& matrix, Index rows) {
   const Inertia& inertia = check.inertia;
   const std::string resolution = at_resolution(check.certificate);
   switch (check.verdict) {
     case Verdict::kPositiveDefinite:
-      return fmt::format("K is positive definite: no negative and no zero direction in {}.",
+      return fmt::format("{} is positive definite: no negative and no zero direction in {}.", matrix,
                          counted(rows, "equation"));
     case Verdict::kPositiveSemidefinite:
-      return fmt::format("K is positive semidefinite{}: {}, no negative one.", resolution,
+      return fmt::format("{} is positive semidefinite{}: {}, no negative one.", matrix, resolution,
                          counted(inertia.zero, "zero direction"));
     case Verdict::kNegativeSemidefinite:
-      return fmt::format("K is negative semidefinite{}: {}, no positive one.", resolution,
+      return fmt::format("{} is negative semidefinite{}: {}, no positive one.", matrix, resolution,
                          directions(inertia));
     case Verdict::kNegativeDefinite:
-      return fmt::format("K is negative definite: all {} are negative (a wrong sign?).",
+      return fmt::format("{} is negative definite: all {} are negative (a wrong sign?).", matrix,
                          counted(inertia.negative, "direction"));
     case Verdict::kIndefinite:
-      return fmt::format("K is indefinite: {}{}.", directions(inertia), inertia.zero > 0 ? resolution : "");
+      return fmt::format("{} is indefinite: {}{}.", matrix, directions(inertia),
+                         inertia.zero > 0 ? resolution : "");
     case Verdict::kUnresolved:
       break;
   }
@@ -147,12 +158,34 @@ void write_certificate(Page& page, const Certificate& certificate) {
   for (const std::string& assumption : certificate.assumptions) page.row("assuming", assumption);
 }
 
+void write_witness(Page& page, const Witness& witness) {
+  page.row("witness",
+           fmt::format("x^T K x = {}, {} at most off, for a vector x (in the JSON): one product shows to "
+                       "anyone that K is not positive definite",
+                       rounded(witness.quadratic_form), rounded(witness.error_bound)));
+}
+
+/// "12, 15 and 1,203 more": the first few of a list.
+std::string first_of(const std::vector<Index>& equations) {
+  constexpr std::size_t kShown = 8;
+  std::string text;
+  for (std::size_t k = 0; k < std::min(kShown, equations.size()); ++k) {
+    text += fmt::format("{}{}", k == 0 ? "" : ", ", equations[k]);
+  }
+  if (equations.size() > kShown)
+    text += fmt::format(" and {} more", grouped(static_cast<Offset>(equations.size() - kShown)));
+  return text;
+}
+
 void write_constrained(Page& page, const ConstrainedOutcome& constrained) {
   page.title("The structure on its constraints");
   std::string multipliers = counted(constrained.multipliers, "multiplier");
   if (constrained.rank) multipliers += fmt::format(", {} independent", grouped(*constrained.rank));
   if (constrained.redundant) multipliers += fmt::format(", {} redundant", grouped(*constrained.redundant));
   page.row("constraints", multipliers);
+  if (!constrained.redundant_equations.empty()) {
+    page.row("redundant", "the multipliers of equations " + first_of(constrained.redundant_equations));
+  }
   if (constrained.inertia) write_inertia(page, *constrained.inertia);
   if (constrained.negative_range) {
     page.row("negative", fmt::format("between {} and {}: the rank of the constraints is not certified",
@@ -166,7 +199,7 @@ void write_constrained(Page& page, const ConstrainedOutcome& constrained) {
 void write_check(Page& page, const Outcome& outcome) {
   const CheckOutcome& check = *outcome.check;
   if (check.constrained) page.sentence(constrained_sentence(*check.constrained, check.certificate));
-  page.sentence(verdict_sentence(check, outcome.rows_analysed));
+  page.sentence(verdict_sentence(check, subject(outcome), outcome.rows_analysed));
   if (const std::string meaning = consequence(check); !meaning.empty()) page.sentence(meaning);
   if (check.verdict_as_written) {
     page.sentence(fmt::format("For every matrix whose rounding gives the numbers in the file: {}.",
@@ -175,6 +208,7 @@ void write_check(Page& page, const Outcome& outcome) {
   page.blank();
   write_inertia(page, check.inertia);
   write_certificate(page, check.certificate);
+  if (check.witness) write_witness(page, *check.witness);
   if (check.constrained) write_constrained(page, *check.constrained);
 }
 

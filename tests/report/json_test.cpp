@@ -24,10 +24,12 @@ std::vector<std::string> keys_of(const Json& object) {
 
 TEST(Json, KeysOfACheckInTheirOrder) {
   const std::vector<std::string> expected{
-      "schema_version", "program",      "command",        "arguments",   "title",    "reference",
-      "inputs",         "host",         "rows_analysed",  "rows_struck", "verdict",  "verdict_with_rounding",
-      "inertia",        "certificate",  "constrained",    "risk",        "warnings", "not_checked",
-      "work",           "memory_bytes", "timings_seconds"};
+      "schema_version", "program",      "command",      "arguments",
+      "title",          "reference",    "inputs",       "host",
+      "rows_analysed",  "rows_struck",  "verdict",      "verdict_with_rounding",
+      "inertia",        "certificate",  "constrained",  "witness",
+      "risk",           "risk_allowed", "seed",         "warnings",
+      "not_checked",    "work",         "memory_bytes", "timings_seconds"};
   EXPECT_EQ(keys_of(document_of(samples::definite())), expected);
   EXPECT_EQ(keys_of(document_of(samples::unresolved())), expected);
 }
@@ -54,10 +56,20 @@ TEST(Json, ConstraintsWithAndWithoutRank) {
   EXPECT_EQ(known["rank"], 40);
   EXPECT_EQ(known["inertia"]["positive"], 29715);
   EXPECT_TRUE(known["negative_range"].is_null());
+  EXPECT_EQ(known["redundant_equations"], Json::parse("[29790]"));
   const Json range = document_of(samples::constrained_range())["constrained"];
   EXPECT_TRUE(range["rank"].is_null());
   EXPECT_TRUE(range["inertia"].is_null());
   EXPECT_EQ(range["negative_range"], Json::parse("[0,1]"));
+}
+
+TEST(Json, AWitnessIsGivenWhole) {
+  const Json document = document_of(samples::indefinite());
+  EXPECT_EQ(document["witness"]["x"], Json::parse("[0.5,0.0,-0.25]"));
+  EXPECT_EQ(document["witness"]["quadratic_form"], -3.5e-4);
+  EXPECT_EQ(document["risk"], 1e-6);
+  EXPECT_EQ(document["risk_allowed"], 1e-5);
+  EXPECT_TRUE(document_of(samples::definite())["witness"].is_null());
 }
 
 TEST(Json, CountsStayInTheOrderAsked) {

@@ -86,6 +86,8 @@ Outcome indefinite() {
   certificate.assumptions = {"the random vectors are independent of the matrix"};
   Outcome outcome = checked(Verdict::kIndefinite, {2, 0, 29794, 0}, certificate);
   outcome.risk = 1e-6;
+  outcome.risk_allowed = 1e-5;
+  outcome.check->witness = Witness{{0.5, 0, -0.25}, -3.5e-4, 1e-12};
   return outcome;
 }
 
@@ -95,13 +97,20 @@ Outcome unresolved() {
 
 Outcome constrained() {
   Outcome outcome = checked(Verdict::kIndefinite, {40, 1, 29755, 0}, proved_offsets({{1e-11, 41, 1e-13}}));
-  outcome.check->constrained = ConstrainedOutcome{41, 40, 1, Inertia{0, 0, 29715, 0}, {}};
+  ConstrainedOutcome& constrained = outcome.check->constrained.emplace();
+  constrained.multipliers = 41;
+  constrained.rank = 40;
+  constrained.redundant = 1;
+  constrained.inertia = Inertia{0, 0, 29715, 0};
+  constrained.redundant_equations = {29790};
   return outcome;
 }
 
 Outcome constrained_range() {
   Outcome outcome = constrained();
-  outcome.check->constrained = ConstrainedOutcome{41, {}, {}, {}, std::pair<Index, Index>{0, 1}};
+  ConstrainedOutcome& constrained = outcome.check->constrained.emplace();
+  constrained.multipliers = 41;
+  constrained.negative_range = {0, 1};
   return outcome;
 }
 

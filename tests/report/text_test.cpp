@@ -23,6 +23,10 @@ TEST(Text, TheVerdictComesFirst) {
   Outcome definite = samples::definite();
   definite.title.reset();
   definite.reference.reset();
+  EXPECT_EQ(
+      first_line(definite),
+      "The sum of K and 2 added matrices is positive definite: no negative and no zero direction in 29,796");
+  definite.inputs.resize(1);
   EXPECT_EQ(first_line(definite),
             "K is positive definite: no negative and no zero direction in 29,796 equations.");
   EXPECT_EQ(first_line(samples::semidefinite()),
@@ -127,6 +131,8 @@ TEST(Text, ConstraintsAreToldApart) {
   EXPECT_EQ(first_line(samples::constrained_range()),
             "On its constraints the structure has between 0 and 1 negative directions.");
   EXPECT_TRUE(says(samples::constrained(), "41 multipliers, 40 independent, 1 redundant"));
+  EXPECT_TRUE(says(samples::constrained(), "redundant     the multipliers of equations 29790\n"));
+  EXPECT_TRUE(says(samples::indefinite(), "x^T K x = -0.00035, 1e-12 at most off"));
   EXPECT_TRUE(says(samples::constrained(), "0 negative, 0 zero, 29,715 positive"));
   EXPECT_TRUE(
       says(samples::constrained_range(), "between 0 and 1: the rank of the constraints is not certified"));
