@@ -125,6 +125,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   pencil.extended_ = request.precision == Precision::kExtended;
   pencil.risk_ = std::make_shared<RiskBudget>(request.risk);
   pencil.seed_ = mixed_seed(request.seed, outcome.inputs);
+  pencil.factor_options_.seed = pencil.seed_;
   pencil.factor_options_.progress = context.progress;
   pencil.factor_options_.cancel = context.cancel;
 

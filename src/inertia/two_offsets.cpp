@@ -10,7 +10,7 @@ namespace stanchion {
 namespace {
 
 /// First guesses of c over ||A_s||_inf: a few times the bounds usually seen, so that one factorization is enough.
-constexpr double kDefiniteGuess = 0x1p-40, kGeneralGuess = 0x1p-36;
+constexpr double kDefiniteGuess = 0x1p-40, kGeneralGuess = 0x1p-32;
 constexpr double kExtendedDefiniteGuess = 0x1p-88, kExtendedGeneralGuess = 0x1p-84;
 /// A retry takes this many times the bound just reported: a changed offset moves the bound a little.
 constexpr double kMargin = 2.0;

@@ -1,7 +1,7 @@
 #include "symbolic/schedule.hpp"
 
 #include <algorithm>
-#include <queue>
+#include <functional>
 
 #include "dense/block_lower.hpp"
 
@@ -55,6 +55,40 @@ Offset stack_peak(const AssemblyTree& tree, const Fronts& fronts, const std::vec
     }
   }
   return peak;
+}
+
+/// While subtrees run: the largest stacks, one a worker, beside every result so far.
+Offset subtree_phase_peak(const Schedule& schedule, Offset results) {
+  std::vector<Offset> arenas;
+  for (const Subtree& subtree : schedule.subtrees) arenas.push_back(subtree.arena_doubles);
+  const auto busy = std::min<std::size_t>(static_cast<std::size_t>(schedule.workers), arenas.size());
+  std::partial_sort(arenas.begin(), arenas.begin() + static_cast<std::ptrdiff_t>(busy), arenas.end(), std::greater<>());
+  Offset peak = results;
+  for (std::size_t k = 0; k < busy; ++k) peak += arenas[k] + schedule.panel_doubles;
+  return peak;
+}
+
+/// While the shared fronts run: their stack, which keeps its highest mark, beside the results not yet taken in.
+Offset shared_phase_peak(const AssemblyTree& tree, const Schedule& schedule, Offset results) {
+  if (schedule.shared_fronts.empty()) return 0;
+  std::vector<Offset> taken(static_cast<std::size_t>(tree.fronts), 0), waiting(static_cast<std::size_t>(tree.fronts), 0);
+  for (const Subtree& subtree : schedule.subtrees) {
+    const Index up = tree.parent[subtree.end - 1];
+    if (up >= 0) taken[static_cast<std::size_t>(up)] += subtree.result_doubles;
+  }
+  std::vector<char> shared(static_cast<std::size_t>(tree.fronts), 0);
+  for (const Index f : schedule.shared_fronts) shared[static_cast<std::size_t>(f)] = 1;
+  Offset top = 0, touched = 0, peak = 0;
+  for (const Index f : schedule.shared_fronts) {
+    const auto i = static_cast<std::size_t>(f);
+    touched = std::max(touched, top + front_doubles(tree, f));
+    peak = std::max(peak, touched + results);
+    results -= taken[i];
+    top += result_doubles(tree, f) - waiting[i];
+    const Index up = tree.parent[f];
+    if (up >= 0 && shared[static_cast<std::size_t>(up)]) waiting[static_cast<std::size_t>(up)] += result_doubles(tree, f);
+  }
+  return peak + schedule.panel_doubles;
 }
 
 }  // namespace
@@ -112,9 +146,7 @@ Schedule make_schedule(const AssemblyTree& tree, int workers) {
   }
   schedule.shared_arena_doubles = stack_peak(tree, schedule.shared_fronts, shared);
   schedule.panel_doubles = Offset{largest} * std::min<Index>(widest, kFrontBlock);
-  const int busy = static_cast<int>(std::min<std::size_t>(static_cast<std::size_t>(workers), schedule.subtrees.size()));
-  schedule.peak_doubles = busy * (schedule.worker_arena_doubles + schedule.panel_doubles) + results +
-                          (schedule.shared_fronts.empty() ? 0 : schedule.shared_arena_doubles + schedule.panel_doubles);
+  schedule.peak_doubles = std::max(subtree_phase_peak(schedule, results), shared_phase_peak(tree, schedule, results));
   return schedule;
 }
 
