@@ -41,7 +41,7 @@ struct OffsetRun {
 struct Certificate {
   Level level = Level::kNone;
   std::optional<std::string> method;      ///< "offsets" or "relative"
-  std::optional<std::string> precision;   ///< "double" or "single"
+  std::optional<std::string> precision;   ///< "double", "single" or "extended"
   std::optional<double> resolution;       ///< the offset c, in units of the scaled matrix
   std::optional<double> error_bound;      ///< largest eta of the runs
   std::optional<double> relative_bound;   ///< bound on ||F|| of the relative test
@@ -57,6 +57,7 @@ struct Witness {
   std::vector<double> x;      ///< one entry per equation of the files, zero where struck
   double quadratic_form = 0;  ///< x^T A x
   double error_bound = 0;     ///< of that number; quadratic_form + error_bound < 0
+  std::optional<std::string> path = std::nullopt;  ///< the file it was written to
 };
 
 /// The structure on its constraints (saddle point matrices); absent members: only the range is known.
@@ -73,7 +74,7 @@ struct CheckOutcome {
   Verdict verdict = Verdict::kUnresolved;
   Inertia inertia;
   Certificate certificate;
-  std::optional<Verdict> verdict_as_written;  ///< with --digits: for all matrices that round to the file
+  std::optional<Verdict> verdict_for_digits;  ///< with --digits: for all matrices that round to the file
   std::optional<ConstrainedOutcome> constrained;
   std::optional<Witness> witness;
 };
@@ -131,6 +132,13 @@ struct MemoryUse {
   Offset forecast = 0, peak = 0;
 };
 
+/// One statistical attempt, charged to the risk before its vectors were drawn, whatever came of it.
+struct RiskEvent {
+  std::optional<double> factor;  ///< of the second matrix in the sum that was tried; absent: K with what is added
+  double charged = 0;            ///< failure probability
+  bool certified = false;        ///< the attempt passed
+};
+
 struct HostRecord {
   int cores = 1;
   std::string blas, isa;
@@ -152,6 +160,9 @@ struct Outcome {
   double risk = 0;          ///< spent: total failure probability of the statistical statements
   double risk_allowed = 0;  ///< the budget of the document
   std::uint64_t seed = 1;
+  std::vector<RiskEvent> events;  ///< in order
+  std::string struck_sha256;      ///< of the equations struck, from 1, ascending, one a line; empty when none
+  std::string scaling_sha256;     ///< of the exponents of the scaling, by equation analysed, one a line
   std::optional<std::string> title, reference;
   std::optional<CheckOutcome> check;
   std::optional<CountOutcome> count;

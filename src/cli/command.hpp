@@ -30,5 +30,6 @@ std::unique_ptr<Command> make_forecast_command();
 std::unique_ptr<Command> make_specimen_command();
 std::unique_ptr<Command> make_convert_command();
 std::unique_ptr<Command> make_selftest_command();
+std::unique_ptr<Command> make_recheck_command();
 
 }  // namespace stanchion::cli

@@ -2,30 +2,37 @@
 
 #include <fmt/format.h>
 
-#include <filesystem>
-#include <system_error>
-
 #include "cli/answer_file.hpp"
+#include "cli/certificate_file.hpp"
 #include "cli/interrupt.hpp"
 #include "cli/log_file.hpp"
+#include "cli/output_targets.hpp"
 #include "cli/progress_line.hpp"
 #include "cli/terminal.hpp"
+#include "cli/witness_file.hpp"
 #include "model/exit_code.hpp"
 #include "model/names.hpp"
 #include "model/version.hpp"
-
 #include "report/json.hpp"
 #include "report/text.hpp"
 
 namespace stanchion::cli {
 namespace {
 
-void declare_output_options(Arguments& arguments, OutputOptions& options) {
+void declare_output_options(Arguments& arguments, OutputOptions& options, Question question) {
   arguments.group("Output");
   arguments.text("--expect", options.expectation, "WHAT",
                  "positive-definite, zero:N or negative:N; exit 1 if not");
   arguments.text("--json", options.json, "FILE",
                  "the whole answer as JSON; - for standard output, nothing else");
+  if (question != Question::kForecast) {
+    arguments.text("--certificate", options.certificate, "FILE",
+                   "what was claimed and how, for `stanchion recheck FILE`");
+  }
+  if (question == Question::kCheck) {
+    arguments.text("--witness", options.witness, "FILE",
+                   "a vector x with x^T K x < 0 as CSV, if one is found");
+  }
   arguments.flag("--quiet", options.quiet, "no text on standard output, no progress line");
   arguments.text("--log", options.log, "FILE", "one line a stage; - for standard error");
   arguments.text("--title", options.title, "TEXT", "printed above the answer");
@@ -42,38 +49,76 @@ Result<Judgement> build_judgement(const OutputOptions& output, bool symmetric_pa
   return judgement;
 }
 
-/// Bad usage when writing the answer would destroy a file that is read.
-Status check_overwrites_nothing(const std::string& target, const InputRequest& input) {
-  std::vector<std::string> read{input.stiffness};
-  for (const auto& path :
-       {input.geometric, input.mass, input.dofs, input.nodes, input.axes, input.fix, input.multipliers}) {
-    if (path) read.push_back(*path);
+/// Every file that is to be written, opened ahead of the work.
+struct Targets {
+  std::optional<AnswerFile> json, certificate, witness;
+  std::vector<CertifiedFile> support_files;  ///< for the certificate
+};
+
+Status refuse_dash(const char* option, const std::optional<std::string>& path) {
+  if (path != "-") return {};
+  return Status::bad_usage("bad-argument", "this is written to a file, not to standard output", option,
+                           "name a file");
+}
+
+Status open_targets(const OutputOptions& output, const InputRequest& input, Targets& targets) {
+  const std::vector<std::string> read = files_read(input);
+  for (const Status& status :
+       {refuse_dash("--certificate", output.certificate), refuse_dash("--witness", output.witness),
+        check_targets_differ({{"--json", output.json},
+                              {"--certificate", output.certificate},
+                              {"--witness", output.witness},
+                              {"--log", output.log}})}) {
+    if (!status.ok()) return status;
   }
-  for (const AddedMatrix& added : input.added) read.push_back(added.path);
-  for (const std::string& path : read) {
-    std::error_code absent;
-    if (!std::filesystem::equivalent(path, target, absent)) continue;
-    return Status::bad_usage("contradiction", path + " is read and would be overwritten", "--json",
-                             "name another file for the answer");
+  const auto open = [&read](const char* option, const std::optional<std::string>& path,
+                            std::optional<AnswerFile>& file) {
+    auto opened = open_target(option, path, read);
+    if (opened.ok()) file = std::move(*opened);
+    return opened.status();
+  };
+  if (Status status = open("--json", output.json, targets.json); !status.ok()) return status;
+  if (Status status = open("--certificate", output.certificate, targets.certificate); !status.ok())
+    return status;
+  if (Status status = open("--witness", output.witness, targets.witness); !status.ok()) return status;
+  if (!output.certificate) return {};
+  auto support = certify_support_files(input);
+  if (support.ok()) targets.support_files = std::move(*support);
+  return support.status();
+}
+
+/// Writes the witness, or says that there is none; the file then does not appear.
+Status deliver_witness(const OutputOptions& output, const std::optional<std::string>& dofs, Targets& targets,
+                       Outcome& outcome) {
+  if (!output.witness) return {};
+  auto& witness = outcome.check->witness;
+  if (!witness) {
+    const bool definite = outcome.check->verdict == Verdict::kPositiveDefinite;
+    const Warning none{"no-witness",
+                       definite ? "no vector with x^T K x < 0 exists, for K is positive definite"
+                                : "no vector with x^T K x < 0 beyond its rounding was found",
+                       *output.witness + " (not written)"};
+    outcome.warnings.push_back(none);
+    if (output.quiet) print_failure({StatusKind::kOk, none.code, none.message, none.place});
+    return {};
   }
+  const auto table = witness_table(*witness, dofs);
+  if (!table.ok()) return table.status();
+  if (Status status = targets.witness->commit(*table); !status.ok()) return status;
+  witness->path = output.witness;
   return {};
 }
 
-/// The JSON file, opened ahead of the work; nothing when no file was asked.
-Result<std::optional<AnswerFile>> open_json_file(const OutputOptions& output, const InputRequest& input) {
-  std::optional<AnswerFile> file;
-  if (!output.json || *output.json == "-") return file;
-  if (Status status = check_overwrites_nothing(*output.json, input); !status.ok()) return status;
-
-  auto opened = AnswerFile::open(*output.json);
-  if (!opened.ok()) return opened.status();
-  file = std::move(*opened);
-  return file;
-}
-
-Status deliver(const Outcome& outcome, const OutputOptions& output, std::optional<AnswerFile>& json_file) {
-  if (json_file) {
-    if (Status status = json_file->commit(to_json(outcome)); !status.ok()) return status;
+Status deliver(const Request& request, const OutputOptions& output, Targets& targets, Outcome& outcome) {
+  if (Status status = deliver_witness(output, request.input.dofs, targets, outcome); !status.ok())
+    return status;
+  if (targets.certificate) {
+    const auto document = make_certificate(request, outcome, std::move(targets.support_files));
+    if (Status status = targets.certificate->commit(certificate_to_json(document)); !status.ok())
+      return status;
+  }
+  if (targets.json) {
+    if (Status status = targets.json->commit(to_json(outcome)); !status.ok()) return status;
   }
   if (output.json == "-") return print_result(to_json(outcome));
   if (output.quiet) return {};
@@ -88,7 +133,7 @@ const char* QuestionCommand::name() const {
 
 void QuestionCommand::declare(Arguments& arguments) {
   declare_request_options(arguments, request_, question_);
-  declare_output_options(arguments, output_);
+  declare_output_options(arguments, output_, question_);
 }
 
 Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log) const {
@@ -104,12 +149,13 @@ Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log)
 }
 
 Result<int> QuestionCommand::run(const Call& call) {
-  const auto request = build_request(request_, question_);
+  auto request = build_request(request_, question_);
   if (!request.ok()) return request.status();
+  request->want_witness = output_.witness.has_value();
   const auto judgement = build_judgement(output_, request_.symmetric_part, question_);
   if (!judgement.ok()) return judgement.status();
-  auto json_file = open_json_file(output_, request->input);
-  if (!json_file.ok()) return json_file.status();
+  Targets targets;
+  if (Status status = open_targets(output_, request->input, targets); !status.ok()) return status;
   const auto log = LogFile::open(output_.log);
   if (!log.ok()) return log.status();
 
@@ -124,7 +170,7 @@ Result<int> QuestionCommand::run(const Call& call) {
   outcome->arguments = call.arguments;
   outcome->title = output_.title;
   outcome->reference = output_.reference;
-  if (Status status = deliver(*outcome, output_, *json_file); !status.ok()) return status;
+  if (Status status = deliver(*request, output_, targets, *outcome); !status.ok()) return status;
   const ExitCode code = exit_code(*outcome, *judgement);
   log->line(fmt::format("answered, exit code {}", static_cast<int>(code)));
   return code;

@@ -10,7 +10,7 @@ namespace stanchion::cli {
 
 /// Where the answer goes, as typed.
 struct OutputOptions {
-  std::optional<std::string> json, log, title, reference, expectation;
+  std::optional<std::string> json, certificate, witness, log, title, reference, expectation;
   bool quiet = false;
 };
 

@@ -65,7 +65,7 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
   if (request.digits) {
     auto rounded = pencil->certify(0, definite_first, pencil->digits_error(0, *request.digits), pool, outcome);
     if (!rounded.ok()) return rounded.status();
-    check.verdict_as_written = verdict_of(rounded->inertia, rounded->certificate.level);
+    check.verdict_for_digits = verdict_of(rounded->inertia, rounded->certificate.level);
   }
   outcome.check = std::move(check);
   return outcome;

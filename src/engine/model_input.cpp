@@ -3,6 +3,7 @@
 #include <algorithm>
 
 #include "base/clock.hpp"
+#include "engine/fingerprint.hpp"
 #include "io/equation_list.hpp"
 #include "io/preflight.hpp"
 #include "io/read_matrix.hpp"
@@ -13,6 +14,14 @@ namespace {
 
 void append(Warnings& all, Warnings more) {
   for (Warning& warning : more) all.push_back(std::move(warning));
+}
+
+std::vector<Index> struck_equations(const EquationMap& map) {
+  std::vector<Index> struck;
+  for (std::size_t i = 0; i < map.reduced.size(); ++i) {
+    if (map.reduced[i] < 0) struck.push_back(static_cast<Index>(i));
+  }
+  return struck;
 }
 
 class ModelReader {
@@ -119,6 +128,7 @@ class ModelReader {
     auto map = strike_map(model_.stiffness.rows, *remove);
     if (!map.ok()) return map.status();
     outcome_.rows_struck = map->struck();
+    outcome_.struck_sha256 = equations_fingerprint(struck_equations(*map));
     std::vector<SymmetricMatrix*> members{&model_.stiffness};
     for (SymmetricMatrix& added : model_.added) members.push_back(&added);
     if (model_.second) members.push_back(&*model_.second);

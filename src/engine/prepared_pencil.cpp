@@ -8,6 +8,7 @@
 #include "base/counter_random.hpp"
 #include "dense/blas.hpp"
 #include "dense/selftest.hpp"
+#include "engine/fingerprint.hpp"
 #include "engine/host.hpp"
 #include "model/not_checked.hpp"
 #include "sparse/product.hpp"
@@ -120,6 +121,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   auto scale = power_of_two_scaling(pencil.family_, pencil.combination(0).coefficients);
   if (!scale.ok()) return scale.status();
   pencil.scale_ = std::move(*scale);
+  outcome.scaling_sha256 = scaling_fingerprint(pencil.scale_.span(), pencil.analysis_.tree.position_of.span());
   pencil.resolution_ = request.resolution;
   pencil.memory_cap_ = request.memory_cap_bytes;
   pencil.extended_ = request.precision == Precision::kExtended;
@@ -165,9 +167,14 @@ Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const 
                                              Outcome& outcome) {
   CertifyOptions certify_options{options, extended_ ? nullptr : risk_.get(), seed_, bytes_for_factor()};
   certify_options.offsets.extended = extended_;
+  const double spent_before = risk_->spent();
   auto certified = certify_inertia(analysis_, matrix, certify_options, pool);
   if (!certified.ok()) return certified.status();
   outcome.risk = risk_->spent();
+  if (risk_->spent() > spent_before) {
+    outcome.events.push_back({has_second_ ? std::optional(matrix.coefficients.back()) : std::nullopt,
+                              risk_->spent() - spent_before, certified->certificate.level == Level::kStatistical});
+  }
   outcome.timings.factor += certified->seconds;
   outcome.timings.certify += certified->certify_seconds;
   outcome.work.factorizations += certified->factorizations;

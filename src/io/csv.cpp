@@ -159,4 +159,14 @@ bool CsvReader::real(std::string_view field, const char* what, double& value) {
   return false;
 }
 
+std::string csv_field(const std::string& text) {
+  if (text.find_first_of(",;\"\t ") == std::string::npos) return text;
+  std::string quoted = "\"";
+  for (const char c : text) {
+    if (c == '"') quoted += '"';
+    quoted += c;
+  }
+  return quoted + '"';
+}
+
 }  // namespace stanchion

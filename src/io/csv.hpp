@@ -59,4 +59,7 @@ class CsvReader {
   bool started_ = false, has_header_ = false;
 };
 
+/// A field as CSV has it: quoted where it must be.
+std::string csv_field(const std::string& text);
+
 }  // namespace stanchion

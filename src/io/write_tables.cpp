@@ -1,6 +1,7 @@
 // Writers of the small tables that accompany a matrix.
 #include <new>
 
+#include "io/csv.hpp"
 #include "io/dof_map.hpp"
 #include "io/equation_list.hpp"
 #include "io/node_table.hpp"
@@ -9,20 +10,6 @@
 #include "io/value_list.hpp"
 
 namespace stanchion {
-namespace {
-
-/// A field as CSV has it: quoted where it must be.
-std::string field(const std::string& text) {
-  if (text.find_first_of(",;\"\t ") == std::string::npos) return text;
-  std::string quoted = "\"";
-  for (const char c : text) {
-    if (c == '"') quoted += '"';
-    quoted += c;
-  }
-  return quoted + '"';
-}
-
-}  // namespace
 
 Status write_dof_map(const DofMap& map, const std::string& path) {
   OutputFile file(path, has_extension(path, ".gz"));
@@ -32,7 +19,7 @@ Status write_dof_map(const DofMap& map, const std::string& path) {
     append_integer(line, equation + 1);
     line += ',';
     if (map.node(equation) != kNoNode) append_integer(line, map.node(equation));
-    line += ',' + field(map.dof(equation)) + '\n';
+    line += ',' + csv_field(map.dof(equation)) + '\n';
     file.write(line);
   }
   return file.commit();
@@ -69,7 +56,7 @@ Status write_values(const std::vector<ListedValue>& values, const std::string& p
     append_number(line, listed.value);
     line += ',';
     if (listed.tolerance) append_number(line, *listed.tolerance);
-    line += ',' + field(listed.label) + '\n';
+    line += ',' + csv_field(listed.label) + '\n';
     file.write(line);
   }
   return file.commit();

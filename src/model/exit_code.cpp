@@ -22,8 +22,8 @@ ExitCode code_of_check(const CheckOutcome& check) {
     return kExitUnresolved;
   if (check.verdict != Verdict::kPositiveDefinite) return kExitNotGood;
   // With --digits: definite for the numbers as written is not enough when their rounding could undo it.
-  if (!check.verdict_as_written || *check.verdict_as_written == Verdict::kPositiveDefinite) return kExitGood;
-  return *check.verdict_as_written == Verdict::kUnresolved ? kExitUnresolved : kExitNotGood;
+  if (!check.verdict_for_digits || *check.verdict_for_digits == Verdict::kPositiveDefinite) return kExitGood;
+  return *check.verdict_for_digits == Verdict::kUnresolved ? kExitUnresolved : kExitNotGood;
 }
 
 ExitCode code_of_count(const CountOutcome& count) {

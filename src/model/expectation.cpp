@@ -89,7 +89,7 @@ Comparison compare(const Expectation& expectation, const CheckOutcome& check) {
   }
   const Comparison answer = compare_inertia(expectation, check.inertia);
   // With --digits the expectation must hold for every matrix that rounds to the file.
-  const bool doubtful = check.verdict_as_written && *check.verdict_as_written != check.verdict;
+  const bool doubtful = check.verdict_for_digits && *check.verdict_for_digits != check.verdict;
   return answer == Comparison::kMet && doubtful ? Comparison::kOpen : answer;
 }
 

@@ -44,6 +44,22 @@ const char* name_of(Question question) {
   return "forecast";
 }
 
+const char* name_of(Pencil pencil) {
+  switch (pencil) {
+    case Pencil::kStiffness:
+      return "stiffness";
+    case Pencil::kGeometric:
+      return "geometric";
+    case Pencil::kMass:
+      break;
+  }
+  return "mass";
+}
+
+const char* name_of(Precision precision) {
+  return precision == Precision::kExtended ? "extended" : "double";
+}
+
 const char* name_of(StatusKind kind) {
   switch (kind) {
     case StatusKind::kOk:

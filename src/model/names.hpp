@@ -16,6 +16,12 @@ const char* name_of(Level level);
 /// "check", "count" or "forecast".
 const char* name_of(Question question);
 
+/// "stiffness", "geometric" or "mass".
+const char* name_of(Pencil pencil);
+
+/// "double" or "extended".
+const char* name_of(Precision precision);
+
 /// "bad-usage", "bad-input", ...: the group of a failure, for logs.
 const char* name_of(StatusKind kind);
 

@@ -1,110 +1,14 @@
 #include "report/json.hpp"
 
-#include <cmath>
-#include <nlohmann/json.hpp>
-#include <optional>
-#include <utility>
-#include <vector>
-
-#include "model/names.hpp"
-#include "model/version.hpp"
+#include "report/json_parts.hpp"
 
 namespace stanchion {
 namespace {
 
-using Json = nlohmann::ordered_json;
+using json_parts::Json;
+using json_parts::json_of;
 
 constexpr int kSchemaVersion = 1;
-
-/// JSON has no NaN and no Infinity.
-Json json_of(double number) {
-  return std::isfinite(number) ? Json(number) : Json(nullptr);
-}
-Json json_of(Index number) {
-  return number;
-}
-Json json_of(const std::string& text) {
-  return text;
-}
-
-// Declared ahead of the templates below, which look them up where they are defined.
-Json json_of(const Inertia& inertia);
-Json json_of(const OffsetRun& run);
-Json json_of(const Certificate& certificate);
-Json json_of(const ConstrainedOutcome& constrained);
-Json json_of(const ShiftCount& count);
-Json json_of(const Witness& witness);
-Json json_of(const Warning& warning);
-
-template <class T>
-Json json_of(const std::pair<T, T>& pair) {
-  return Json::array({json_of(pair.first), json_of(pair.second)});
-}
-
-template <class T>
-Json json_of(const std::optional<T>& value) {
-  return value ? json_of(*value) : Json(nullptr);
-}
-
-template <class T>
-Json json_of(const std::vector<T>& items) {
-  Json list = Json::array();
-  for (const T& item : items) list.push_back(json_of(item));
-  return list;
-}
-
-Json json_of(const Inertia& inertia) {
-  return {{"negative", inertia.negative},
-          {"zero", inertia.zero},
-          {"positive", inertia.positive},
-          {"undecided", inertia.undecided}};
-}
-
-Json json_of(const OffsetRun& run) {
-  return {
-      {"offset", json_of(run.offset)}, {"negative", run.negative}, {"error_bound", json_of(run.error_bound)}};
-}
-
-Json json_of(const Certificate& certificate) {
-  return {{"level", name_of(certificate.level)},
-          {"method", json_of(certificate.method)},
-          {"precision", json_of(certificate.precision)},
-          {"resolution", json_of(certificate.resolution)},
-          {"error_bound", json_of(certificate.error_bound)},
-          {"relative_bound", json_of(certificate.relative_bound)},
-          {"failure_probability", json_of(certificate.failure_probability)},
-          {"assumptions", json_of(certificate.assumptions)},
-          {"smallest_eigenvalue_above", json_of(certificate.smallest_eigenvalue_above)},
-          {"smallest_eigenvalue_of_k_above", json_of(certificate.smallest_eigenvalue_of_k_above)},
-          {"runs", json_of(certificate.runs)}};
-}
-
-Json json_of(const ConstrainedOutcome& constrained) {
-  return {{"multipliers", constrained.multipliers},
-          {"rank", json_of(constrained.rank)},
-          {"redundant", json_of(constrained.redundant)},
-          {"inertia", json_of(constrained.inertia)},
-          {"negative_range", json_of(constrained.negative_range)},
-          {"redundant_equations", json_of(constrained.redundant_equations)}};
-}
-
-Json json_of(const Witness& witness) {
-  return {{"quadratic_form", json_of(witness.quadratic_form)},
-          {"error_bound", json_of(witness.error_bound)},
-          {"x", json_of(witness.x)}};
-}
-
-Json json_of(const ShiftCount& count) {
-  return {{"shift", json_of(count.shift)},
-          {"below", json_of(count.below)},
-          {"meaning", count.meaning},
-          {"level", name_of(count.level)},
-          {"method", json_of(count.method)},
-          {"failure_probability", json_of(count.failure_probability)},
-          {"below_range", json_of(count.below_range)},
-          {"holds_outside", json_of(count.holds_outside)},
-          {"certificate", json_of(count.certificate)}};
-}
 
 Json json_of(const ForecastOutcome& forecast) {
   return {{"factor_entries", forecast.factor_entries},
@@ -114,8 +18,12 @@ Json json_of(const ForecastOutcome& forecast) {
           {"seconds", json_of(forecast.seconds)}};
 }
 
-Json json_of(const Warning& warning) {
-  return {{"code", warning.code}, {"message", warning.message}, {"place", warning.place}};
+/// The vector itself unless a file holds it.
+Json witness_of(const Witness& witness) {
+  return {{"quadratic_form", json_of(witness.quadratic_form)},
+          {"error_bound", json_of(witness.error_bound)},
+          {"path", json_of(witness.path)},
+          {"x", witness.path ? Json(nullptr) : json_of(witness.x)}};
 }
 
 Json json_of(const InputRecord& input) {
@@ -157,13 +65,13 @@ Json json_of(const Work& work) {
 Json common_part(const Outcome& outcome) {
   Json document;
   document["schema_version"] = kSchemaVersion;
-  document["program"] = {{"name", program_name()}, {"version", program_version()}};
+  document["program"] = json_parts::program();
   document["command"] = outcome.command;
   document["arguments"] = json_of(outcome.arguments);
   document["title"] = json_of(outcome.title);
   document["reference"] = json_of(outcome.reference);
   document["inputs"] = inputs_of(outcome.inputs);
-  document["host"] = {{"cores", outcome.host.cores}, {"blas", outcome.host.blas}, {"isa", outcome.host.isa}};
+  document["host"] = json_of(outcome.host);
   document["rows_analysed"] = outcome.rows_analysed;
   document["rows_struck"] = outcome.rows_struck;
   return document;
@@ -172,13 +80,12 @@ Json common_part(const Outcome& outcome) {
 void add_answer(Json& document, const Outcome& outcome) {
   if (outcome.check) {
     const CheckOutcome& check = *outcome.check;
-    document["verdict"] = name_of(check.verdict);
-    document["verdict_with_rounding"] =
-        check.verdict_as_written ? Json(name_of(*check.verdict_as_written)) : Json(nullptr);
+    document["verdict"] = json_of(check.verdict);
+    document["verdict_for_all_roundings"] = json_of(check.verdict_for_digits);
     document["inertia"] = json_of(check.inertia);
     document["certificate"] = json_of(check.certificate);
     document["constrained"] = json_of(check.constrained);
-    document["witness"] = json_of(check.witness);
+    document["witness"] = check.witness ? witness_of(*check.witness) : Json(nullptr);
   }
   if (outcome.count) {
     document["counts"] = json_of(outcome.count->counts);
@@ -200,7 +107,7 @@ std::string to_json(const Outcome& outcome) {
   document["work"] = json_of(outcome.work);
   document["memory_bytes"] = {{"forecast", outcome.memory.forecast}, {"peak", outcome.memory.peak}};
   document["timings_seconds"] = json_of(outcome.timings);
-  return document.dump(2, ' ', false, Json::error_handler_t::replace) + "\n";
+  return json_parts::bytes_of(document);
 }
 
 }  // namespace stanchion

@@ -160,9 +160,10 @@ void write_certificate(Page& page, const Certificate& certificate) {
 
 void write_witness(Page& page, const Witness& witness) {
   page.row("witness",
-           fmt::format("x^T K x = {}, {} at most off, for a vector x (in the JSON): one product shows to "
+           fmt::format("x^T K x = {}, {} at most off, for a vector x (in {}): one product shows to "
                        "anyone that K is not positive definite",
-                       rounded(witness.quadratic_form), rounded(witness.error_bound)));
+                       rounded(witness.quadratic_form), rounded(witness.error_bound),
+                       witness.path ? *witness.path : "the JSON"));
 }
 
 /// "12, 15 and 1,203 more": the first few of a list.
@@ -201,9 +202,10 @@ void write_check(Page& page, const Outcome& outcome) {
   if (check.constrained) page.sentence(constrained_sentence(*check.constrained, check.certificate));
   page.sentence(verdict_sentence(check, subject(outcome), outcome.rows_analysed));
   if (const std::string meaning = consequence(check); !meaning.empty()) page.sentence(meaning);
-  if (check.verdict_as_written) {
+  if (check.verdict_for_digits) {
+    page.sentence("That is the verdict for the numbers as written.");
     page.sentence(fmt::format("For every matrix whose rounding gives the numbers in the file: {}.",
-                              verdict_in_words(*check.verdict_as_written)));
+                              verdict_in_words(*check.verdict_for_digits)));
   }
   page.blank();
   write_inertia(page, check.inertia);

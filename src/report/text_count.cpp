@@ -14,10 +14,30 @@ std::string count_in_words(const ShiftCount& count) {
   return fmt::format("{} to {}", grouped(count.below_range.first), grouped(count.below_range.second));
 }
 
+/// How near to the shift an eigenvalue would have to lie for the count to be off; "-" when nothing can.
+std::string margin(const ShiftCount& count) {
+  if (!count.holds_outside) return "-";
+  return rounded(std::max(std::abs(count.holds_outside->first - count.shift),
+                          std::abs(count.holds_outside->second - count.shift)));
+}
+
+/// "an eigenvalue lies within 3e-09 of this shift": why only a range is known.
+std::string what_lies_near(const ShiftCount& count) {
+  const bool factors = count.meaning.rfind("critical factors", 0) == 0;
+  const Index many = count.below_range.second - count.below_range.first;
+  const std::string who = many == 1
+                              ? (factors ? "a critical factor lies" : "an eigenvalue lies")
+                              : grouped(many) + (factors ? " critical factors lie" : " eigenvalues lie");
+  return who + " within " + margin(count) + " of this shift";
+}
+
 std::string backing(const ShiftCount& count, Index rows_counted) {
   const Index spread = count.below_range.second - count.below_range.first;
-  if (count.level == Level::kNone && spread < rows_counted)
-    return "only the range; no certificate for one number";
+  if (count.level == Level::kNone && spread < rows_counted) {
+    if (!count.holds_outside) return "only the range; no certificate for one number";
+    return backing_in_words(count.certificate.level, count.certificate.failure_probability) +
+           " for the range; " + what_lies_near(count);
+  }
   std::string text;
   if (count.level == Level::kStatistical && count.failure_probability) {
     text = "statistics, wrong with probability at most " + rounded(*count.failure_probability);
@@ -37,13 +57,6 @@ bool any_relative(const std::vector<ShiftCount>& counts) {
                      [](const ShiftCount& count) { return count.method == "relative"; });
 }
 
-/// How near to the shift an eigenvalue would have to lie for the count to be off; "-" when nothing can.
-std::string margin(const ShiftCount& count) {
-  if (!count.holds_outside) return "-";
-  return rounded(std::max(std::abs(count.holds_outside->first - count.shift),
-                          std::abs(count.holds_outside->second - count.shift)));
-}
-
 bool same_meaning(const std::vector<ShiftCount>& counts) {
   return std::all_of(counts.begin(), counts.end(),
                      [&](const ShiftCount& count) { return count.meaning == counts.front().meaning; });
@@ -54,6 +67,11 @@ bool any_margin(const std::vector<ShiftCount>& counts) {
                      [](const ShiftCount& count) { return count.holds_outside.has_value(); });
 }
 
+bool any_exact_but_for_margin(const std::vector<ShiftCount>& counts) {
+  return std::any_of(counts.begin(), counts.end(),
+                     [](const ShiftCount& count) { return count.below && count.holds_outside; });
+}
+
 /// The answer itself when a single shift was asked; else whether all were answered.
 std::string headline(const std::vector<ShiftCount>& counts) {
   const bool all = std::all_of(counts.begin(), counts.end(), [](const ShiftCount& count) {
@@ -61,6 +79,11 @@ std::string headline(const std::vector<ShiftCount>& counts) {
   });
   if (counts.size() == 1 && all) {
     return fmt::format("At {}: {} {}.", exact(counts[0].shift), grouped(*counts[0].below), counts[0].meaning);
+  }
+  if (counts.size() == 1 && counts[0].holds_outside) {
+    const auto [least, most] = counts[0].below_range;
+    return fmt::format("At {}: between {} and {} {}; {}.", exact(counts[0].shift), grouped(least),
+                       grouped(most), counts[0].meaning, what_lies_near(counts[0]));
   }
   const std::string meaning = same_meaning(counts) ? ": " + counts.front().meaning : "";
   return (all ? fmt::format("All {} counts are certified", counts.size())
@@ -99,7 +122,7 @@ void write_count(Page& page, const Outcome& outcome) {
   for (const std::string& sentence : answer.sentences) page.sentence(sentence);
   page.blank();
   page.table(rows_of(answer.counts, outcome.rows_analysed), any_margin(answer.counts) ? 3 : 2);
-  if (any_margin(answer.counts)) {
+  if (any_exact_but_for_margin(answer.counts)) {
     page.sentence("A count is exact unless one of what is counted lies within the margin of its shift.");
   }
   if (any_relative(answer.counts)) {

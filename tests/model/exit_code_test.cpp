@@ -52,11 +52,11 @@ TEST(ExitCode, AVerdictWithoutCertificateIsUnresolved) {
 
 TEST(ExitCode, RoundingOfTheFileCanSpoilAGoodAnswer) {
   Outcome outcome = check_outcome(Verdict::kPositiveDefinite, {0, 0, 9, 0});
-  outcome.check->verdict_as_written = Verdict::kPositiveDefinite;
+  outcome.check->verdict_for_digits = Verdict::kPositiveDefinite;
   EXPECT_EQ(exit_code(outcome, {}), 0);
-  outcome.check->verdict_as_written = Verdict::kUnresolved;
+  outcome.check->verdict_for_digits = Verdict::kUnresolved;
   EXPECT_EQ(exit_code(outcome, {}), 3);
-  outcome.check->verdict_as_written = Verdict::kPositiveSemidefinite;
+  outcome.check->verdict_for_digits = Verdict::kPositiveSemidefinite;
   EXPECT_EQ(exit_code(outcome, {}), 1);
 }
 

@@ -68,9 +68,9 @@ TEST(Expectation, NothingIsMetWithoutCertificate) {
 TEST(Expectation, RoundingThatCouldChangeTheVerdictLeavesItOpen) {
   CheckOutcome check = check_with({0, 0, 10, 0});
   check.verdict = Verdict::kPositiveDefinite;
-  check.verdict_as_written = Verdict::kUnresolved;
+  check.verdict_for_digits = Verdict::kUnresolved;
   EXPECT_EQ(compare({Kind::kPositiveDefinite, 0}, check), Comparison::kOpen);
-  check.verdict_as_written = Verdict::kPositiveDefinite;
+  check.verdict_for_digits = Verdict::kPositiveDefinite;
   EXPECT_EQ(compare({Kind::kPositiveDefinite, 0}, check), Comparison::kMet);
 }
 

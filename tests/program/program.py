@@ -13,18 +13,23 @@ import jsonschema
 PROGRAM = os.environ["STANCHION_PROGRAM"]
 SOURCE = pathlib.Path(os.environ["STANCHION_SOURCE"])
 
-with open(SOURCE / "data/schemas/outcome-1.json", encoding="utf-8") as schema_file:
-    VALIDATOR = jsonschema.Draft202012Validator(json.load(schema_file))
+
+def validator(schema):
+    text = (SOURCE / f"data/schemas/{schema}.json").read_text(encoding="utf-8")
+    return jsonschema.Draft202012Validator(json.loads(text))
+
+
+VALIDATORS = {schema: validator(schema) for schema in ("outcome-1", "certificate-1", "recheck-1")}
 
 
 def refuse_constant(text):
     raise ValueError(f"{text} is not JSON")
 
 
-def read_json(text):
-    """The document in `text`, checked against the shipped schema."""
+def read_json(text, schema="outcome-1"):
+    """The document in `text`, checked against a shipped schema."""
     document = json.loads(text, parse_constant=refuse_constant)
-    problems = [f"{list(error.absolute_path)}: {error.message}" for error in VALIDATOR.iter_errors(document)]
+    problems = [f"{list(error.absolute_path)}: {error.message}" for error in VALIDATORS[schema].iter_errors(document)]
     if problems:
         raise AssertionError("the document breaks its schema:\n" + "\n".join(problems))
     return document

@@ -26,7 +26,7 @@ TEST(Json, KeysOfACheckInTheirOrder) {
   const std::vector<std::string> expected{
       "schema_version", "program",      "command",      "arguments",
       "title",          "reference",    "inputs",       "host",
-      "rows_analysed",  "rows_struck",  "verdict",      "verdict_with_rounding",
+      "rows_analysed",  "rows_struck",  "verdict",      "verdict_for_all_roundings",
       "inertia",        "certificate",  "constrained",  "witness",
       "risk",           "risk_allowed", "seed",         "warnings",
       "not_checked",    "work",         "memory_bytes", "timings_seconds"};
@@ -67,6 +67,11 @@ TEST(Json, AWitnessIsGivenWhole) {
   const Json document = document_of(samples::indefinite());
   EXPECT_EQ(document["witness"]["x"], Json::parse("[0.5,0.0,-0.25]"));
   EXPECT_EQ(document["witness"]["quadratic_form"], -3.5e-4);
+  EXPECT_TRUE(document["witness"]["path"].is_null());
+  Outcome in_a_file = samples::indefinite();
+  in_a_file.check->witness->path = "x.csv";
+  EXPECT_EQ(document_of(in_a_file)["witness"]["path"], "x.csv");
+  EXPECT_TRUE(document_of(in_a_file)["witness"]["x"].is_null());
   EXPECT_EQ(document["risk"], 1e-6);
   EXPECT_EQ(document["risk_allowed"], 1e-5);
   EXPECT_TRUE(document_of(samples::definite())["witness"].is_null());

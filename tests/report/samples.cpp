@@ -60,7 +60,7 @@ Outcome definite() {
       checked(Verdict::kPositiveDefinite, {0, 0, 29796, 0}, proved_offsets({{1e-11, 0, 3.4e-13}}));
   outcome.check->certificate.smallest_eigenvalue_above = 9.66e-12;
   outcome.check->certificate.smallest_eigenvalue_of_k_above = 0.0021;
-  outcome.check->verdict_as_written = Verdict::kPositiveDefinite;
+  outcome.check->verdict_for_digits = Verdict::kPositiveDefinite;
   outcome.inputs.push_back({"added", "bridge/Gdead.mtx", std::string(64, 'a'), 29796, 345678, 1.35});
   outcome.inputs.push_back({"added", "bridge/soil.mtx", std::string(64, 'b'), 29796, 120, -0.5});
   outcome.title = "Lock footbridge, span 2";

@@ -1,0 +1,172 @@
+#include <fmt/format.h>
+
+#include "base/digest.hpp"
+#include "base/mapped_file.hpp"
+#include "cli/answer_file.hpp"
+#include "cli/certificate_inputs.hpp"
+#include "cli/command.hpp"
+#include "cli/interrupt.hpp"
+#include "cli/progress_line.hpp"
+#include "cli/request_options.hpp"
+#include "cli/terminal.hpp"
+#include "engine/pipeline.hpp"
+#include "engine/second_path.hpp"
+#include "model/claims.hpp"
+#include "model/exit_code.hpp"
+#include "model/validate.hpp"
+#include "report/recheck_report.hpp"
+
+namespace stanchion::cli {
+namespace {
+
+class RecheckCommand : public Command {
+ public:
+  const char* name() const override { return "recheck"; }
+  const char* summary() const override { return "repeat the claim of a certificate by another path"; }
+  void declare(Arguments& arguments) override;
+  Result<int> run(const Call& call) override;
+
+ private:
+  Status deliver(const RecheckReport& report, std::optional<AnswerFile>& file) const;
+
+  std::optional<std::string> certificate_, json_, root_;
+  RequestOptions resources_;  ///< threads and memory cap only
+  bool quiet_ = false;
+};
+
+void RecheckCommand::declare(Arguments& arguments) {
+  arguments.positional("FILE", certificate_, "FILE", "a certificate written by --certificate", true);
+  arguments.text("--root", root_, "DIR", "the folder in which the paths of the certificate are looked up");
+  arguments.text("--json", json_, "FILE", "the comparison as JSON; - for standard output, nothing else");
+  arguments.flag("--quiet", quiet_, "no text on standard output, no progress line");
+  arguments.whole("--threads", resources_.threads, "N", "default: every processor available");
+  arguments.text("--memory-cap", resources_.memory_cap, "SIZE", "stop before using more, e.g. 8G or 512M");
+  arguments.closing(
+      "The digests of the input files are verified first. Then the same question is asked again with "
+      "another\n"
+      "ordering, another seed and plain kernels, and every claim is compared.\n"
+      "Exit code 0: agreed; 1: contradicted; 2: the inputs or the certificate are not what they were; 3: "
+      "the\n"
+      "second path could not say as much.\n\n"
+      "Example:\n"
+      "  stanchion check K.mtx --certificate K.cert.json\n"
+      "  stanchion recheck K.cert.json");
+}
+
+/// The question of the certificate, with what this call allows.
+Result<Request> second_request(const Request& claimed, const RequestOptions& resources, Question question) {
+  RequestOptions options = resources;
+  options.stiffness = claimed.input.stiffness;
+  const auto allowed = build_request(options, Question::kForecast);
+  if (!allowed.ok()) return allowed.status();
+  Request request = by_second_path(claimed);
+  request.threads = allowed->threads;
+  request.memory_cap_bytes = allowed->memory_cap_bytes;
+  if (Status status = validate(request, question); !status.ok()) return status;
+  return request;
+}
+
+/// The work above which a second look in extended precision would take too long to be done unasked.
+constexpr double kCheapInExtended = 5e8;
+
+/// Where the zero directions differ but neither statement excludes the other, a resolution that tells.
+Result<std::vector<ClaimComparison>> compare_with_second_look(const Outcome& claimed, const Outcome& found,
+                                                              Request request, const RunContext& context) {
+  std::vector<ClaimComparison> comparisons = compare_claims(claimed, found);
+  const bool may_differ = claimed.check && claimed.check->certificate.level != Level::kNone &&
+                          claimed.check->inertia.zero != found.check->inertia.zero;
+  if (!may_differ || worst(comparisons) == Agreement::kContradicted) return comparisons;
+  std::vector<Request> looks;
+  for (const double resolution : telling_resolutions(claimed.check->certificate, found.check->certificate)) {
+    request.resolution = resolution;
+    looks.push_back(request);
+  }
+  if (claimed.check->certificate.resolution && found.work.factor_flops < kCheapInExtended) {
+    request.resolution = *claimed.check->certificate.resolution / 8;
+    request.precision = Precision::kExtended;
+    looks.push_back(request);
+  }
+  for (const Request& look : looks) {
+    const auto again = run_check(look, context);
+    if (!again.ok()) return again.status();
+    auto sharper = compare_claims(claimed, *again);
+    if (worst(sharper) == Agreement::kContradicted) return sharper;
+  }
+  return comparisons;
+}
+
+/// The engine digests what it reads: the files must not have changed between the verification and the work.
+Status same_inputs(const Outcome& claimed_files, const std::vector<CertifiedFile>& files,
+                   const Outcome& found) {
+  std::size_t at = 0;
+  for (const CertifiedFile& file : files) {
+    if (!file.rows) continue;
+    if (at >= found.inputs.size() || found.inputs[at].sha256 != file.sha256) return input_changed(file.path);
+    ++at;
+  }
+  if (claimed_files.struck_sha256 == found.struck_sha256) return {};
+  return Status::bad_input("input-changed",
+                           "other equations are struck out than when the certificate was made",
+                           files.front().path, "recheck with the program version that made the certificate");
+}
+
+Status RecheckCommand::deliver(const RecheckReport& report, std::optional<AnswerFile>& file) const {
+  if (file) {
+    if (Status status = file->commit(recheck_to_json(report)); !status.ok()) return status;
+  }
+  if (json_ == "-") return print_result(recheck_to_json(report));
+  return quiet_ ? Status{} : print_result(recheck_to_text(report));
+}
+
+ExitCode code_of(Agreement agreement) {
+  switch (agreement) {
+    case Agreement::kAgreed:
+      return kExitGood;
+    case Agreement::kContradicted:
+      return kExitNotGood;
+    case Agreement::kNotRepeated:
+      break;
+  }
+  return kExitUnresolved;
+}
+
+Result<int> RecheckCommand::run(const Call& call) {
+  const auto bytes = MappedFile::open(*certificate_);
+  if (!bytes.ok()) return bytes.status();
+  auto document = read_certificate(bytes->bytes(), *certificate_);
+  if (!document.ok()) return document.status();
+  auto json_file = open_recheck_answer(json_, *certificate_, *document);
+  if (!json_file.ok()) return json_file.status();
+  if (Status status = find_inputs(*document, root_); !status.ok()) return status;
+
+  const Question question = document->outcome.check ? Question::kCheck : Question::kCount;
+  const auto request = second_request(document->request, resources_, question);
+  if (!request.ok()) return request.status();
+  use_plain_kernels();
+  CancellationToken token;
+  const InterruptGuard guard(token);
+  ProgressLine line(standard_error_is_terminal() && !quiet_);
+  RunContext context;
+  context.cancel = &token;
+  context.progress = [&line](const char* stage, double fraction) { line.update(stage, fraction); };
+  auto found = question == Question::kCheck ? run_check(*request, context) : run_count(*request, context);
+  if (!found.ok()) return found.status();
+  if (Status status = same_inputs(document->outcome, document->files, *found); !status.ok()) return status;
+  auto claims = compare_with_second_look(document->outcome, *found, *request, context);
+  if (!claims.ok()) return claims.status();
+  line.erase();
+
+  const RecheckReport report{*certificate_,    sha256(bytes->bytes()), document->program_version,
+                             call.arguments,   std::move(*claims),     std::move(document->outcome),
+                             std::move(*found)};
+  if (Status status = deliver(report, *json_file); !status.ok()) return status;
+  return code_of(worst(report.claims));
+}
+
+}  // namespace
+
+std::unique_ptr<Command> make_recheck_command() {
+  return std::make_unique<RecheckCommand>();
+}
+
+}  // namespace stanchion::cli

@@ -1,0 +1,281 @@
+#include "model/claims.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+#include <limits>
+
+#include "model/names.hpp"
+
+namespace stanchion {
+namespace {
+
+constexpr double kInfinity = std::numeric_limits<double>::infinity();
+
+/// "At least" or "at most" `count` eigenvalues of the scaled matrix lie below `at`.
+struct Fact {
+  double at = 0;
+  Offset count = 0;
+};
+
+struct Facts {
+  std::vector<Fact> least, most;
+};
+
+/// c - e and c + e, rounded outwards.
+double below(double offset, double error) {
+  return std::nextafter(offset - error, -kInfinity);
+}
+double above(double offset, double error) {
+  return std::nextafter(offset + error, kInfinity);
+}
+
+/// Every factorization of A_s - o I with m negative pivots and error e: lambda_m < o + e, lambda_(m+1) >= o -
+/// e.
+Facts facts_of_runs(const Certificate& certificate) {
+  Facts facts;
+  for (const OffsetRun& run : certificate.runs) {
+    if (!run.error_bound) continue;
+    facts.least.push_back({above(run.offset, *run.error_bound), run.negative});
+    facts.most.push_back({below(run.offset, *run.error_bound), run.negative});
+  }
+  return facts;
+}
+
+/// What the inertia itself says: signs about 0, zero directions about the resolution.
+Facts facts_of_inertia(const Inertia& inertia, const Certificate& certificate, Index rows, bool signs_only) {
+  Facts facts{{{0, inertia.negative}}, {{0, Offset{rows} - inertia.positive}}};
+  if (signs_only || inertia.zero == 0 || !certificate.resolution) return facts;
+  const double reach = above(*certificate.resolution, certificate.error_bound.value_or(0));
+  facts.least.push_back({reach, Offset{inertia.negative} + inertia.zero});
+  facts.most.push_back({-reach, Offset{rows} - inertia.positive - inertia.zero});
+  return facts;
+}
+
+void append(Facts& facts, const Facts& more) {
+  facts.least.insert(facts.least.end(), more.least.begin(), more.least.end());
+  facts.most.insert(facts.most.end(), more.most.begin(), more.most.end());
+}
+
+bool cannot_both_be_true(const Facts& one, const Facts& other) {
+  const auto clash = [](const std::vector<Fact>& least, const std::vector<Fact>& most) {
+    return std::any_of(least.begin(), least.end(), [&](const Fact& a) {
+      return std::any_of(most.begin(), most.end(),
+                         [&](const Fact& b) { return a.at <= b.at && a.count > b.count; });
+    });
+  };
+  return clash(one.least, other.most) || clash(other.least, one.most);
+}
+
+std::string in_words(const Inertia& inertia) {
+  return fmt::format("{} negative, {} zero, {} positive", inertia.negative, inertia.zero, inertia.positive);
+}
+
+std::string in_words(const CheckOutcome& check) {
+  if (check.certificate.level == Level::kNone) return "nothing certified";
+  std::string text = fmt::format("{}: {}", name_of(check.verdict), in_words(check.inertia));
+  if (!check.constrained) return text;
+  if (check.constrained->inertia)
+    return text + "; on the constraints " + in_words(*check.constrained->inertia);
+  if (!check.constrained->negative_range) return text;
+  const auto [least, most] = *check.constrained->negative_range;
+  return fmt::format("{}; on the constraints {} to {} negative", text, least, most);
+}
+
+ClaimComparison contradicted(std::string why) {
+  return {{}, Agreement::kContradicted, {}, {}, std::move(why)};
+}
+ClaimComparison not_repeated(std::string why) {
+  return {{}, Agreement::kNotRepeated, {}, {}, std::move(why)};
+}
+ClaimComparison agreed() {
+  return {{}, Agreement::kAgreed, {}, {}, {}};
+}
+
+Verdict verdict_that_follows(const Inertia& inertia) {
+  if (inertia.undecided > 0) return Verdict::kUnresolved;
+  if (inertia.negative > 0 && inertia.positive > 0) return Verdict::kIndefinite;
+  if (inertia.negative > 0)
+    return inertia.zero > 0 ? Verdict::kNegativeSemidefinite : Verdict::kNegativeDefinite;
+  return inertia.zero > 0 ? Verdict::kPositiveSemidefinite : Verdict::kPositiveDefinite;
+}
+
+/// Offsets give exactly n - m positive directions from a run above its bound, m negative ones from one below.
+bool follows_from_runs(const CheckOutcome& check, Index rows) {
+  const auto& runs = check.certificate.runs;
+  const auto given_by = [&](int side, Index many) {
+    return std::any_of(runs.begin(), runs.end(), [&](const OffsetRun& run) {
+      return run.error_bound && side * run.offset > *run.error_bound && run.negative == many;
+    });
+  };
+  const bool positive = check.inertia.positive == 0 || given_by(1, rows - check.inertia.positive);
+  return positive && (check.inertia.negative == 0 || given_by(-1, check.inertia.negative));
+}
+
+/// No matrix at all can satisfy such a claim, or the claim is not what its own factorizations give.
+std::optional<std::string> contradiction_within(const CheckOutcome& check, Index rows) {
+  const Inertia& i = check.inertia;
+  if (Offset{i.negative} + i.zero + i.positive + i.undecided != rows) {
+    return fmt::format("the certificate contradicts itself: {} in {} equations", in_words(i), rows);
+  }
+  if (check.verdict != verdict_that_follows(i)) {
+    return fmt::format("the certificate contradicts itself: {} with {}", name_of(check.verdict), in_words(i));
+  }
+  Facts all = facts_of_inertia(i, check.certificate, rows, false);
+  append(all, facts_of_runs(check.certificate));
+  const bool supported = check.certificate.method != "offsets" || follows_from_runs(check, rows);
+  if (supported && !cannot_both_be_true(all, all)) return std::nullopt;
+  return fmt::format("the certificate contradicts itself: its factorizations do not give {}", in_words(i));
+}
+
+/// Inertia against inertia, about 0 only.
+ClaimComparison compare_signs(const Inertia& claimed, const Inertia& found, const std::string& where) {
+  const Index rows = found.negative + found.zero + found.positive + found.undecided;
+  const Facts facts = facts_of_inertia(claimed, {}, rows, true);
+  if (cannot_both_be_true(facts, facts_of_inertia(found, {}, rows, true)) ||
+      Offset{claimed.negative} + claimed.zero + claimed.positive + claimed.undecided != rows) {
+    return contradicted(fmt::format("{}{} against {}", where, in_words(claimed), in_words(found)));
+  }
+  if (found.negative >= claimed.negative && found.positive >= claimed.positive) return agreed();
+  return not_repeated(fmt::format("{}the second path decides less: {}", where, in_words(found)));
+}
+
+ClaimComparison compare_constrained(const ConstrainedOutcome& claimed, const ConstrainedOutcome& found) {
+  if (claimed.rank && found.rank && *claimed.rank != *found.rank) {
+    return contradicted(fmt::format("the rank of the constraints is {} and {}", *claimed.rank, *found.rank));
+  }
+  if (claimed.inertia && found.inertia)
+    return compare_signs(*claimed.inertia, *found.inertia, "on the constraints ");
+  if (claimed.inertia || claimed.rank)
+    return not_repeated("the second path does not certify the rank of the constraints");
+  if (!claimed.negative_range) return agreed();
+  const auto range = found.inertia
+                         ? std::pair{found.inertia->negative, found.inertia->negative + found.inertia->zero}
+                         : found.negative_range.value_or(std::pair{0, std::numeric_limits<Index>::max()});
+  if (range.first > claimed.negative_range->second || range.second < claimed.negative_range->first) {
+    return contradicted("the ranges of negative directions on the constraints exclude each other");
+  }
+  if (range.first >= claimed.negative_range->first && range.second <= claimed.negative_range->second)
+    return agreed();
+  return not_repeated("the second path leaves a wider range on the constraints");
+}
+
+ClaimComparison compare_roundings(Verdict claimed, Verdict found) {
+  if (claimed == found) return agreed();
+  const auto negative = [](Verdict verdict) {
+    return verdict == Verdict::kIndefinite || verdict == Verdict::kNegativeDefinite ||
+           verdict == Verdict::kNegativeSemidefinite;
+  };
+  const bool clash = (claimed == Verdict::kPositiveDefinite && negative(found)) ||
+                     (negative(claimed) && found == Verdict::kPositiveDefinite);
+  const std::string why = fmt::format("for all roundings {} against {}", name_of(claimed), name_of(found));
+  return clash ? contradicted(why) : not_repeated(why);
+}
+
+ClaimComparison compare_inertia(const CheckOutcome& claimed, const CheckOutcome& found, Index rows,
+                                bool same_scaling) {
+  if (claimed.certificate.level == Level::kNone) return not_repeated("the certificate claims nothing");
+  if (auto why = contradiction_within(claimed, rows)) return contradicted(*why);
+  if (found.certificate.level == Level::kNone) return not_repeated("the second path certifies nothing");
+  Facts old_facts = facts_of_inertia(claimed.inertia, claimed.certificate, rows, !same_scaling);
+  Facts new_facts = facts_of_inertia(found.inertia, found.certificate, rows, !same_scaling);
+  if (same_scaling) {
+    append(old_facts, facts_of_runs(claimed.certificate));
+    append(new_facts, facts_of_runs(found.certificate));
+  }
+  if (cannot_both_be_true(old_facts, new_facts)) {
+    return contradicted(fmt::format("{} against {}", in_words(claimed.inertia), in_words(found.inertia)));
+  }
+  return compare_signs(claimed.inertia, found.inertia, "");
+}
+
+ClaimComparison compare_check(const CheckOutcome& claimed, const CheckOutcome& found, Index rows,
+                              bool same_scaling) {
+  std::vector<ClaimComparison> parts{compare_inertia(claimed, found, rows, same_scaling)};
+  if (claimed.constrained) {
+    parts.push_back(found.constrained ? compare_constrained(*claimed.constrained, *found.constrained)
+                                      : not_repeated("the second path knows of no multipliers"));
+  }
+  if (claimed.verdict_for_digits) {
+    parts.push_back(found.verdict_for_digits
+                        ? compare_roundings(*claimed.verdict_for_digits, *found.verdict_for_digits)
+                        : not_repeated("the second path did not ask about roundings"));
+  }
+  ClaimComparison result = *std::max_element(
+      parts.begin(), parts.end(),
+      [](const ClaimComparison& a, const ClaimComparison& b) { return a.agreement < b.agreement; });
+  result.claimed = in_words(claimed);
+  result.found = in_words(found);
+  return result;
+}
+
+std::string in_words(const ShiftCount& count) {
+  if (count.certificate.level == Level::kNone) return "nothing certified";
+  if (count.below_range.first == count.below_range.second) return fmt::format("{}", count.below_range.first);
+  return fmt::format("{} to {}", count.below_range.first, count.below_range.second);
+}
+
+ClaimComparison compare_count(const ShiftCount& claimed, const ShiftCount& found, Index rows,
+                              bool same_scaling) {
+  const auto [least, most] = claimed.below_range;
+  if (claimed.certificate.level == Level::kNone)
+    return not_repeated("the certificate claims nothing at this shift");
+  if (least > most || most > rows || (claimed.below && (*claimed.below != least || *claimed.below != most))) {
+    return contradicted("the certificate contradicts itself: its count and its range do not agree");
+  }
+  if (found.certificate.level == Level::kNone)
+    return not_repeated("the second path certifies nothing at this shift");
+  if (claimed.meaning != found.meaning) {
+    return not_repeated(fmt::format("the second path counts something else: {}", found.meaning));
+  }
+  const bool disjoint = found.below_range.first > most || found.below_range.second < least;
+  if (disjoint || (same_scaling && cannot_both_be_true(facts_of_runs(claimed.certificate),
+                                                       facts_of_runs(found.certificate)))) {
+    return contradicted(fmt::format("{} against {}", in_words(claimed), in_words(found)));
+  }
+  if (found.below_range.first >= least && found.below_range.second <= most) return agreed();
+  return not_repeated(fmt::format("the second path leaves a wider range: {}", in_words(found)));
+}
+
+}  // namespace
+
+std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcome& found) {
+  const bool same_scaling = !claimed.scaling_sha256.empty() && claimed.scaling_sha256 == found.scaling_sha256;
+  std::vector<ClaimComparison> comparisons;
+  if (claimed.check && found.check) {
+    comparisons.push_back(compare_check(*claimed.check, *found.check, found.rows_analysed, same_scaling));
+  }
+  if (claimed.count && found.count) {
+    const std::size_t many = std::min(claimed.count->counts.size(), found.count->counts.size());
+    for (std::size_t k = 0; k < many; ++k) {
+      const ShiftCount& old_count = claimed.count->counts[k];
+      const ShiftCount& new_count = found.count->counts[k];
+      ClaimComparison comparison = compare_count(old_count, new_count, found.rows_analysed, same_scaling);
+      comparison.shift = old_count.shift;
+      comparison.claimed = in_words(old_count);
+      comparison.found = in_words(new_count);
+      comparisons.push_back(std::move(comparison));
+    }
+  }
+  return comparisons;
+}
+
+Agreement worst(const std::vector<ClaimComparison>& comparisons) {
+  if (comparisons.empty()) return Agreement::kNotRepeated;
+  return std::max_element(
+             comparisons.begin(), comparisons.end(),
+             [](const ClaimComparison& a, const ClaimComparison& b) { return a.agreement < b.agreement; })
+      ->agreement;
+}
+
+std::vector<double> telling_resolutions(const Certificate& claimed, const Certificate& found) {
+  if (!claimed.resolution || !claimed.error_bound) return {};
+  const double old_error = *claimed.error_bound, new_error = found.error_bound.value_or(old_error);
+  std::vector<double> resolutions{*claimed.resolution + old_error + 4 * std::max(old_error, new_error)};
+  const double finer = *claimed.resolution - old_error - 2 * new_error;
+  if (finer > 1.5 * new_error) resolutions.push_back(finer);
+  return resolutions;
+}
+
+}  // namespace stanchion

@@ -1,0 +1,272 @@
+// A certificate read back. Nothing in the file is trusted: every member is looked at before it is used.
+#include <fmt/format.h>
+
+#include <cmath>
+#include <limits>
+#include <nlohmann/json.hpp>
+
+#include "model/input_files.hpp"
+#include "model/names.hpp"
+#include "report/certificate_json.hpp"
+
+namespace stanchion {
+namespace {
+
+using Json = nlohmann::json;
+
+/// What is wrong with the file, thrown inside this file only and caught in read_certificate.
+struct BadMember {
+  std::string message;
+};
+
+/// One value of the document with the way to it, for messages: "claims/0/inertia/negative".
+class Member {
+ public:
+  Member(const Json& value, std::string way) : value_(value), way_(std::move(way)) {}
+
+  Member at(const std::string& key) const {
+    const std::string way = way_.empty() ? key : way_ + "/" + key;
+    if (!value_.is_object() || !value_.contains(key)) throw BadMember{fmt::format("'{}' is missing", way)};
+    return {value_[key], way};
+  }
+
+  std::vector<Member> items() const {
+    if (!value_.is_array()) wrong("no list");
+    std::vector<Member> list;
+    for (std::size_t k = 0; k < value_.size(); ++k)
+      list.emplace_back(value_[k], fmt::format("{}/{}", way_, k));
+    return list;
+  }
+
+  bool is_null() const { return value_.is_null(); }
+
+  std::string text() const {
+    if (!value_.is_string()) wrong("no text");
+    return value_.get<std::string>();
+  }
+
+  bool truth() const {
+    if (!value_.is_boolean()) wrong("neither true nor false");
+    return value_.get<bool>();
+  }
+
+  double real() const {
+    if (!value_.is_number() || !std::isfinite(value_.get<double>())) wrong("no number");
+    return value_.get<double>();
+  }
+
+  std::uint64_t natural() const {
+    if (!value_.is_number_unsigned()) wrong("no whole number from 0");
+    return value_.get<std::uint64_t>();
+  }
+
+  Index index() const {
+    if (natural() > static_cast<std::uint64_t>(std::numeric_limits<Index>::max())) wrong("too large");
+    return static_cast<Index>(natural());
+  }
+
+  /// One of the values whose names the documents use.
+  template <class Enum>
+  Enum named(std::initializer_list<Enum> values) const {
+    for (const Enum value : values) {
+      if (text() == name_of(value)) return value;
+    }
+    wrong("none of the known words");
+  }
+
+  [[noreturn]] void wrong(const char* what) const { throw BadMember{fmt::format("'{}' is {}", way_, what)}; }
+
+ private:
+  const Json& value_;
+  std::string way_;
+};
+
+/// Nothing for null, else what `read` makes of the member.
+template <class Read>
+auto unless_null(const Member& member, const Read& read) -> std::optional<decltype(read(member))> {
+  if (member.is_null()) return std::nullopt;
+  return read(member);
+}
+
+double real_of(const Member& member) {
+  return member.real();
+}
+Index index_of(const Member& member) {
+  return member.index();
+}
+std::string text_of(const Member& member) {
+  return member.text();
+}
+std::optional<double> optional_real(const Member& member) {
+  return unless_null(member, real_of);
+}
+
+Verdict verdict_of(const Member& member) {
+  return member.named({Verdict::kPositiveDefinite, Verdict::kPositiveSemidefinite,
+                       Verdict::kNegativeSemidefinite, Verdict::kNegativeDefinite, Verdict::kIndefinite,
+                       Verdict::kUnresolved});
+}
+
+Level level_of(const Member& member) {
+  return member.named({Level::kProved, Level::kStatistical, Level::kNone});
+}
+
+Inertia inertia_of(const Member& member) {
+  return {member.at("negative").index(), member.at("zero").index(), member.at("positive").index(),
+          member.at("undecided").index()};
+}
+
+template <class T, class Read>
+std::pair<T, T> pair_of(const Member& member, const Read& read) {
+  const auto both = member.items();
+  if (both.size() != 2) member.wrong("no pair");
+  return {read(both[0]), read(both[1])};
+}
+
+Certificate certificate_of(const Member& member) {
+  Certificate certificate;
+  certificate.level = level_of(member.at("level"));
+  certificate.method = unless_null(member.at("method"), text_of);
+  certificate.precision = unless_null(member.at("precision"), text_of);
+  certificate.resolution = optional_real(member.at("resolution"));
+  certificate.error_bound = optional_real(member.at("error_bound"));
+  certificate.relative_bound = optional_real(member.at("relative_bound"));
+  certificate.failure_probability = optional_real(member.at("failure_probability"));
+  for (const Member& run : member.at("runs").items()) {
+    certificate.runs.push_back(
+        {run.at("offset").real(), run.at("negative").index(), optional_real(run.at("error_bound"))});
+  }
+  return certificate;
+}
+
+ConstrainedOutcome constrained_of(const Member& member) {
+  ConstrainedOutcome constrained;
+  constrained.multipliers = member.at("multipliers").index();
+  constrained.rank = unless_null(member.at("rank"), index_of);
+  constrained.redundant = unless_null(member.at("redundant"), index_of);
+  constrained.inertia = unless_null(member.at("inertia"), inertia_of);
+  constrained.negative_range = unless_null(
+      member.at("negative_range"), [](const Member& range) { return pair_of<Index>(range, index_of); });
+  return constrained;
+}
+
+CheckOutcome check_of(const Member& claim) {
+  CheckOutcome check;
+  check.verdict = verdict_of(claim.at("verdict"));
+  check.verdict_for_digits = unless_null(claim.at("verdict_for_all_roundings"), verdict_of);
+  check.inertia = inertia_of(claim.at("inertia"));
+  check.certificate = certificate_of(claim.at("certificate"));
+  check.constrained = unless_null(claim.at("constrained"), constrained_of);
+  return check;
+}
+
+ShiftCount count_of(const Member& claim) {
+  ShiftCount count;
+  count.shift = claim.at("shift").real();
+  count.below = unless_null(claim.at("below"), index_of);
+  count.meaning = claim.at("meaning").text();
+  count.level = level_of(claim.at("level"));
+  count.below_range = pair_of<Index>(claim.at("below_range"), index_of);
+  count.holds_outside = unless_null(claim.at("holds_outside"),
+                                    [](const Member& band) { return pair_of<double>(band, real_of); });
+  count.certificate = certificate_of(claim.at("certificate"));
+  return count;
+}
+
+void read_claims(const Member& claims, Outcome& outcome) {
+  const auto list = claims.items();
+  if (outcome.command == "check") {
+    if (list.size() != 1) claims.wrong("not the one claim that check makes");
+    outcome.check = check_of(list.front());
+    return;
+  }
+  if (list.empty()) claims.wrong("empty");
+  outcome.count.emplace();
+  for (const Member& claim : list) outcome.count->counts.push_back(count_of(claim));
+}
+
+CertifiedFile file_of(const Member& member) {
+  return {member.at("role").text(),
+          member.at("path").text(),
+          member.at("absolute_path").text(),
+          member.at("sha256").text(),
+          unless_null(member.at("rows"), index_of),
+          unless_null(member.at("entries"), [](const Member& m) { return static_cast<Offset>(m.natural()); }),
+          optional_real(member.at("factor"))};
+}
+
+/// The role of a file in the request; false for a role nobody knows.
+bool place_file(const CertifiedFile& file, InputRequest& input) {
+  if (file.role == "stiffness") {
+    input.stiffness = file.path;
+  } else if (file.role == "added") {
+    input.added.push_back({file.path, file.factor.value_or(1)});
+  } else if (std::optional<std::string>* place = file_of_role(input, file.role)) {
+    *place = file.path;
+  } else {
+    return false;
+  }
+  return true;
+}
+
+void read_question(const Member& question, Request& request) {
+  InputRequest& input = request.input;
+  request.pencil = question.at("pencil").named({Pencil::kStiffness, Pencil::kGeometric, Pencil::kMass});
+  for (const Member& shift : question.at("shifts").items()) request.shifts.push_back(shift.real());
+  input.load_sign_minus = question.at("load_sign").text() == "minus";
+  input.symmetric_part = question.at("symmetric_part").truth();
+  input.strike_held = question.at("strike_held").truth();
+  input.base = unless_null(question.at("base"), index_of);
+  input.rows = unless_null(question.at("rows"), index_of);
+  request.resolution = optional_real(question.at("resolution"));
+  request.digits = unless_null(question.at("digits"), index_of);
+  request.precision = question.at("precision").named({Precision::kDouble, Precision::kExtended});
+}
+
+CertificateDocument document_of(const Member& root) {
+  if (root.at("document").text() != "certificate") root.at("document").wrong("not 'certificate'");
+  if (root.at("schema_version").natural() != 1) root.at("schema_version").wrong("of a version unknown here");
+  CertificateDocument document;
+  Outcome& outcome = document.outcome;
+  document.program_version = root.at("program").at("version").text();
+  outcome.command = root.at("command").text();
+  if (outcome.command != "check" && outcome.command != "count")
+    root.at("command").wrong("neither check nor count");
+  read_question(root.at("question"), document.request);
+  for (const Member& file : root.at("files").items()) {
+    document.files.push_back(file_of(file));
+    if (!place_file(document.files.back(), document.request.input)) file.at("role").wrong("no known role");
+  }
+  if (document.request.input.stiffness.empty()) root.at("files").wrong("without a stiffness matrix");
+  outcome.rows_analysed = root.at("rows_analysed").index();
+  outcome.rows_struck = root.at("struck").at("equations").index();
+  outcome.struck_sha256 = unless_null(root.at("struck").at("sha256"), text_of).value_or("");
+  outcome.scaling_sha256 = unless_null(root.at("scaling").at("sha256"), text_of).value_or("");
+  read_claims(root.at("claims"), outcome);
+  document.request.risk = outcome.risk_allowed = root.at("risk").at("allowed").real();
+  outcome.risk = root.at("risk").at("spent").real();
+  document.request.seed = outcome.seed = root.at("seed").natural();
+  if (outcome.count && outcome.count->counts.size() != document.request.shifts.size()) {
+    root.at("claims").wrong("not one claim a shift");
+  }
+  return document;
+}
+
+Status bad_certificate(std::string message, const std::string& path) {
+  return Status::bad_input("bad-certificate", std::move(message), path,
+                           "give a file written by --certificate, as it was written");
+}
+
+}  // namespace
+
+Result<CertificateDocument> read_certificate(std::string_view text, const std::string& path) {
+  const Json json = Json::parse(text.begin(), text.end(), nullptr, false);
+  if (json.is_discarded()) return bad_certificate("this is not JSON", path);
+  try {
+    return document_of(Member(json, ""));
+  } catch (const BadMember& bad) {
+    return bad_certificate(bad.message, path);
+  }
+}
+
+}  // namespace stanchion

@@ -1,0 +1,140 @@
+#include "report/recheck_report.hpp"
+
+#include <fmt/format.h>
+
+#include "model/version.hpp"
+#include "report/json_parts.hpp"
+#include "report/numbers.hpp"
+#include "report/page.hpp"
+#include "report/text_sections.hpp"
+
+namespace stanchion {
+namespace {
+
+using json_parts::Json;
+using json_parts::json_of;
+
+constexpr int kSchemaVersion = 1;
+constexpr const char* kOrdering = "minimum degree";
+
+const char* name_of(Agreement agreement) {
+  switch (agreement) {
+    case Agreement::kAgreed:
+      return "agreed";
+    case Agreement::kContradicted:
+      return "contradicted";
+    case Agreement::kNotRepeated:
+      break;
+  }
+  return "not_repeated";
+}
+
+std::string in_words(Agreement agreement) {
+  return agreement == Agreement::kNotRepeated ? "not repeated" : name_of(agreement);
+}
+
+std::string headline(Agreement agreement, std::size_t claims) {
+  const std::string all = claims == 1 ? "the claim" : fmt::format("all {} claims", claims);
+  switch (agreement) {
+    case Agreement::kAgreed:
+      return fmt::format("Agreed: {} of the certificate {} found again by another path.", all,
+                         claims == 1 ? "was" : "were");
+    case Agreement::kContradicted:
+      return "NOT AGREED: the certificate and the second path make statements that cannot both be true.";
+    case Agreement::kNotRepeated:
+      break;
+  }
+  return "Not repeated: the second path could not say as much as the certificate, and did not contradict it.";
+}
+
+void write_alarm(Page& page, const RecheckReport& report) {
+  page.sentence(
+      "The certificate was altered, or the machine or the program made a mistake, then or now. Rely on "
+      "neither "
+      "answer: run `stanchion selftest`, then the original command again on another machine.");
+  if (report.claimed.risk > 0 || report.found.risk > 0) {
+    page.sentence(fmt::format("By chance alone this happens with probability at most {}.",
+                              rounded(report.claimed.risk + report.found.risk)));
+  }
+}
+
+void write_claims(Page& page, const std::vector<ClaimComparison>& claims) {
+  const bool shifts = claims.size() > 1 || (!claims.empty() && claims.front().shift);
+  std::vector<std::vector<std::string>> rows;
+  if (shifts) rows.push_back({"shift", "claimed", "found", "result"});
+  for (const ClaimComparison& claim : claims) {
+    const std::string result = in_words(claim.agreement) + (claim.why.empty() ? "" : ": " + claim.why);
+    if (shifts) {
+      rows.push_back({claim.shift ? exact(*claim.shift) : "", claim.claimed, claim.found, result});
+    } else {
+      page.row("claimed", claim.claimed);
+      page.row("found", claim.found);
+      page.row("result", result);
+    }
+  }
+  if (shifts) page.table(rows, 3);
+}
+
+Json claim_of(const ClaimComparison& claim) {
+  return {{"shift", json_of(claim.shift)},
+          {"result", name_of(claim.agreement)},
+          {"claimed", claim.claimed},
+          {"found", claim.found},
+          {"why", claim.why}};
+}
+
+Json inputs_of(const Outcome& found) {
+  Json list = Json::array();
+  for (const InputRecord& input : found.inputs) {
+    list.push_back({{"role", input.role}, {"path", input.path}, {"sha256", input.sha256}});
+  }
+  return list;
+}
+
+}  // namespace
+
+std::string recheck_to_text(const RecheckReport& report) {
+  const Agreement agreement = worst(report.claims);
+  Page page;
+  page.sentence(headline(agreement, report.claims.size()));
+  if (agreement == Agreement::kContradicted) write_alarm(page, report);
+  page.blank();
+  write_claims(page, report.claims);
+  page.blank();
+  page.row("certificate",
+           fmt::format("{} (made by {} {})", report.certificate_path, program_name(), report.made_by));
+  page.row("second path", fmt::format("{} ordering, plain kernels ({}), seed {}", kOrdering,
+                                      report.found.host.isa, report.found.seed));
+  write_inputs(page, report.found);
+  page.row("time", fmt::format("{}; {} {}", duration_in_words(report.found.timings.total), program_name(),
+                               program_version()));
+  write_warnings(page, report.found.warnings);
+  return page.text();
+}
+
+std::string recheck_to_json(const RecheckReport& report) {
+  const Agreement agreement = worst(report.claims);
+  Json document;
+  document["schema_version"] = kSchemaVersion;
+  document["program"] = json_parts::program();
+  document["command"] = "recheck";
+  document["arguments"] = json_of(report.arguments);
+  document["certificate"] = {{"path", report.certificate_path},
+                             {"sha256", report.certificate_sha256},
+                             {"program_version", report.made_by},
+                             {"command", report.claimed.command}};
+  document["agreed"] = agreement == Agreement::kAgreed;
+  document["result"] = name_of(agreement);
+  document["claims"] = Json::array();
+  for (const ClaimComparison& claim : report.claims) document["claims"].push_back(claim_of(claim));
+  document["second_path"] = {
+      {"ordering", kOrdering}, {"kernels", report.found.host.isa}, {"seed", report.found.seed}};
+  document["inputs"] = inputs_of(report.found);
+  document["risk"] = {{"claimed", json_of(report.claimed.risk)}, {"found", json_of(report.found.risk)}};
+  document["host"] = json_of(report.found.host);
+  document["warnings"] = json_of(report.found.warnings);
+  document["seconds"] = json_of(report.found.timings.total);
+  return json_parts::bytes_of(document);
+}
+
+}  // namespace stanchion

@@ -1,0 +1,93 @@
+"""What the numbers of a file can tell: --precision, --digits, --risk and --seed."""
+
+import unittest
+
+from program import ProgramTest, chain, diagonal
+
+
+def ring(rows):
+    """Springs of whole stiffness in a closed ring, held by one spring 2^-48: all but free, and exactly known."""
+    entries = {(i, i): 0.0 for i in range(rows)}
+    for i in range(rows):
+        j, stiffness = (i + 1) % rows, float(1 + 7 * i % 11)
+        entries[i, i] += stiffness
+        entries[j, j] += stiffness
+        entries[max(i, j), min(i, j)] = -stiffness
+    entries[0, 0] += 2.0 ** -48
+    return entries
+
+
+class PrecisionTest(ProgramTest):
+    def test_double_unless_asked(self):
+        path = self.matrix("K.mtx", 4, chain(4))
+        for arguments in ([], ["--precision", "double"]):
+            self.assertEqual(self.expect(0, "check", path, *arguments)["certificate"]["precision"], "double")
+
+    def test_extended(self):
+        path = self.matrix("K.mtx", 4, chain(4))
+        document = self.expect(0, "check", path, "--precision", "extended")
+        self.assertEqual(document["certificate"]["precision"], "extended")
+        self.assertLess(document["certificate"]["error_bound"], 1e-20)
+        self.assertIn("in extended precision", self.run_program("check", path, "--precision", "extended").stdout)
+        counted = self.expect(0, "count", path, "--at", "0.5", "--precision", "extended")
+        self.assertEqual(counted["counts"][0]["certificate"]["precision"], "extended")
+
+    def test_extended_tells_what_double_cannot(self):
+        path = self.matrix("K.mtx", 30, ring(30))
+        self.assertEqual(self.expect(0, "check", path, "--precision", "extended")["verdict"], "positive_definite")
+        double = self.expect(1, "check", path)
+        self.assertEqual(double["verdict"], "positive_semidefinite")
+        self.assertIn("last-resort", [warning["code"] for warning in double["warnings"]])
+
+    def test_other_words(self):
+        path = self.matrix("K.mtx", 4, chain(4))
+        for value in ("single", "Double", ""):
+            with self.subTest(value):
+                self.assertIn("--precision", self.expect_failure(2, "bad-precision", "check", path, "--precision", value))
+
+
+class DigitsTest(ProgramTest):
+    def setUp(self):
+        super().setUp()
+        # Definite as written; with the off-diagonal 1.0 that would have been written 0.999 or 1.00 it is not.
+        self.close = self.matrix("K.mtx", 2, {(0, 0): 1.0, (1, 0): 0.999, (1, 1): 1.0})
+
+    def test_neighbours_may_be_singular(self):
+        document = self.expect(1, "check", self.close, "--digits", "3")
+        self.assertEqual(document["verdict"], "positive_definite")
+        self.assertEqual(document["verdict_for_all_roundings"], "positive_semidefinite")
+        run = self.run_program("check", self.close, "--digits", "3")
+        self.assertTrue(run.stdout.startswith("K is positive definite"), run.stdout)
+        self.assertIn("For every matrix whose rounding gives the numbers in the file: positive semidefinite",
+                      " ".join(run.stdout.split()))
+
+    def test_enough_digits_settle_it(self):
+        document = self.expect(0, "check", self.close, "--digits", "8")
+        self.assertEqual(document["verdict_for_all_roundings"], "positive_definite")
+        self.assertIsNone(self.expect(0, "check", self.close)["verdict_for_all_roundings"])
+
+    def test_an_expectation_must_hold_for_all_of_them(self):
+        self.expect(3, "check", self.close, "--digits", "3", "--expect", "positive-definite")
+        self.expect(0, "check", self.close, "--digits", "8", "--expect", "positive-definite")
+
+
+class RiskTest(ProgramTest):
+    def test_allowed_and_spent(self):
+        path = self.matrix("K.mtx", 5, diagonal([1, -2, 3, -4, 5]))
+        document = self.expect(1, "check", path, "--risk", "1e-4", "--seed", "12345678901234567")
+        self.assertEqual((document["risk_allowed"], document["seed"]), (1e-4, 12345678901234567))
+        self.assertLessEqual(document["risk"], document["risk_allowed"])
+
+    def test_a_shift_on_an_eigenvalue_in_words(self):
+        path = self.matrix("D.mtx", 4, diagonal([1, 2, 2, 3]))
+        document = self.expect(3, "count", path, "--at", "2,2.5")
+        low, high = document["counts"][0]["holds_outside"]
+        self.assertTrue(low < 2 < high and high - low < 1e-6)
+        self.assertIsNone(document["counts"][1]["holds_outside"])
+        run = self.run_program("count", path, "--at", "2,2.5")
+        self.assertRegex(run.stdout, r"\n +2 +1 to 3 ")
+        self.assertRegex(" ".join(run.stdout.split()), r"2 eigenvalues lie within \S+ of this shift")
+
+
+if __name__ == "__main__":
+    unittest.main()
