@@ -65,11 +65,11 @@ TEST(Check, DigitsWidenTheErrorUntilNothingIsCertain) {
   Request request;
   request.input.stiffness = files.matrix("K.mtx", spring_chain(60, 2));  // lambda_min / lambda_max is about 7e-4
   request.digits = 12;
-  EXPECT_EQ(*answer(run_check(request, {})).check->verdict_as_written, Verdict::kPositiveDefinite);
+  EXPECT_EQ(*answer(run_check(request, {})).check->verdict_for_digits, Verdict::kPositiveDefinite);
   request.digits = 3;
   const Outcome outcome = answer(run_check(request, {}));
   EXPECT_EQ(outcome.check->verdict, Verdict::kPositiveDefinite);
-  EXPECT_NE(*outcome.check->verdict_as_written, Verdict::kPositiveDefinite);
+  EXPECT_NE(*outcome.check->verdict_for_digits, Verdict::kPositiveDefinite);
 }
 
 TEST(Check, WitnessIsNegativeWhenEvaluatedAgain) {
