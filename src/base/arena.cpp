@@ -3,6 +3,7 @@
 #include <sys/mman.h>
 
 #include <algorithm>
+#include <cstdint>
 #include <new>
 #include <utility>
 
@@ -50,6 +51,14 @@ double* Arena::push(Offset count) {
   top_ += rounded;
   high_water_ = std::max(high_water_, top_);
   return block;
+}
+
+void Arena::trim() {
+  constexpr std::uintptr_t kPage = 4096;
+  const auto begin = (reinterpret_cast<std::uintptr_t>(base_ + top_) + kPage - 1) / kPage * kPage;
+  const auto end = reinterpret_cast<std::uintptr_t>(base_ + high_water_);
+  if (begin < end) madvise(reinterpret_cast<void*>(begin), end - begin, MADV_DONTNEED);
+  high_water_ = top_;
 }
 
 void Arena::pop_to(const double* mark) { top_ = mark - base_; }

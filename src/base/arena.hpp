@@ -7,7 +7,7 @@
 
 namespace stanchion {
 
-/// Last in, first out. One thread at a time. Pages already touched stay for reuse until release().
+/// Last in, first out. One thread at a time. Pages already touched stay for reuse until trim().
 class Arena {
  public:
   /// Reserves address space for about `doubles`, with room to grow where the system allows it.
@@ -23,6 +23,9 @@ class Arena {
   double* push(Offset count);
   /// Everything from `mark` up is free again.
   void pop_to(const double* mark);
+
+  /// Gives the pages above the top back to the system; high_water() starts again from there.
+  void trim();
 
   double* top() const { return base_ + top_; }
   Offset used() const { return top_; }

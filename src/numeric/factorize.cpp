@@ -37,12 +37,9 @@ class Factorizer {
       run_.factor = &*result.factor;
     }
     result.component_signs.resize(static_cast<std::size_t>(run_.analysis.tree.components));
-    run_subtrees();
-    collect(result);
-    if (status_.ok() && !run_.abandon) {
-      run_shared_fronts();
-      collect(result);
-    }
+    run_waves(result);
+    for (auto& worker : workers_) collect(result, worker);
+    collect(result, shared_worker_);
     if (!status_.ok()) return status_;
     // Sums of non-negative terms of any practical length are covered by one part in a thousand.
     result.error_bound *= 1.001;
@@ -88,16 +85,32 @@ class Factorizer {
     }
   }
 
-  void run_subtrees() {
+  void run_waves(Factorization& result) {
     const Schedule& schedule = run_.analysis.schedule;
-    const auto count = schedule.subtrees.size();
-    std::vector<std::size_t> by_size(count);
-    std::iota(by_size.begin(), by_size.end(), std::size_t{0});
+    workers_.resize(static_cast<std::size_t>(pool_.size()));
+    for (const Wave& wave : schedule.waves) {
+      run_subtrees(wave);
+      if (!status_.ok() || run_.abandon) return;
+      for (auto& worker : workers_) collect(result, worker);  // their stacks make room for the shared one
+      for (std::size_t k = wave.first_shared; k < wave.end_shared; ++k) {
+        if (!shared_worker_ && !start(shared_worker_, schedule.shared_arena_doubles)) return;
+        if (!step(*shared_worker_, schedule.shared_fronts[k], &pool_)) return;
+      }
+      if (shared_worker_ && &wave != &schedule.waves.back()) {
+        if (Status status = shared_worker_->trim(); !status.ok()) return fail(std::move(status));
+      }
+    }
+  }
+
+  /// The subtrees of one wave, the largest first, each on whichever worker is free.
+  void run_subtrees(const Wave& wave) {
+    const Schedule& schedule = run_.analysis.schedule;
+    std::vector<std::size_t> by_size(wave.end_subtree - wave.first_subtree);
+    std::iota(by_size.begin(), by_size.end(), wave.first_subtree);
     std::stable_sort(by_size.begin(), by_size.end(), [&](std::size_t a, std::size_t b) {
       return schedule.subtrees[a].flops > schedule.subtrees[b].flops;
     });
-    workers_.resize(static_cast<std::size_t>(pool_.size()));
-    pool_.run(static_cast<Offset>(count), [&](Offset piece, int worker) {
+    pool_.run(static_cast<Offset>(by_size.size()), [&](Offset piece, int worker) {
       if (run_.abandon) return;
       auto& mine = workers_[static_cast<std::size_t>(worker)];
       const Subtree& subtree = schedule.subtrees[by_size[static_cast<std::size_t>(piece)]];
@@ -124,36 +137,24 @@ class Factorizer {
     }
   }
 
-  void run_shared_fronts() {
-    const Schedule& schedule = run_.analysis.schedule;
-    if (schedule.shared_fronts.empty()) return;
-    workers_.resize(1);
-    if (!start(workers_[0], schedule.shared_arena_doubles)) return;
-    for (const Index f : schedule.shared_fronts) {
-      if (!step(*workers_[0], f, &pool_)) return;
-    }
-  }
-
-  /// Adds the workers' counts to the result and lets them go.
-  void collect(Factorization& result) {
-    for (auto& worker : workers_) {
-      if (!worker) continue;
-      result.stopped = result.stopped || worker->stopped;
-      result.breakdown = result.breakdown || worker->breakdown;
-      note_fault(result, worker->fault_row);
-      result.delayed_pivots += worker->delayed_pivots;
-      result.two_by_two_pivots += worker->two_by_two_pivots;
-      if (!(worker->largest_row_error <= result.error_bound)) result.error_bound = worker->largest_row_error;
-      for (std::size_t c = 0; c < worker->signs.size(); ++c) {
-        const PivotSigns& mine = worker->signs[c];
-        for (PivotSigns* total : {&result.component_signs[c], &result.signs}) {
-          total->negative += mine.negative;
-          total->zero += mine.zero;
-          total->positive += mine.positive;
-        }
+  /// Adds a worker's counts to the result and lets it go.
+  static void collect(Factorization& result, std::unique_ptr<FrontWorker>& worker) {
+    if (!worker) return;
+    result.stopped = result.stopped || worker->stopped;
+    result.breakdown = result.breakdown || worker->breakdown;
+    note_fault(result, worker->fault_row);
+    result.delayed_pivots += worker->delayed_pivots;
+    result.two_by_two_pivots += worker->two_by_two_pivots;
+    if (!(worker->largest_row_error <= result.error_bound)) result.error_bound = worker->largest_row_error;
+    for (std::size_t c = 0; c < worker->signs.size(); ++c) {
+      const PivotSigns& mine = worker->signs[c];
+      for (PivotSigns* total : {&result.component_signs[c], &result.signs}) {
+        total->negative += mine.negative;
+        total->zero += mine.zero;
+        total->positive += mine.positive;
       }
     }
-    workers_.clear();
+    worker.reset();
   }
 
   static void note_fault(Factorization& result, Index row) {
@@ -165,6 +166,7 @@ class Factorizer {
   FactorRun run_;
   ThreadPool& pool_;
   std::vector<std::unique_ptr<FrontWorker>> workers_;
+  std::unique_ptr<FrontWorker> shared_worker_;
   std::mutex mutex_, progress_mutex_;
   Status status_;
 };

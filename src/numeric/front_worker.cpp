@@ -242,4 +242,9 @@ Status FrontWorker::detach(Index front) {
   return {};
 }
 
+Status FrontWorker::trim() {
+  arena_.trim();
+  return book_arena();
+}
+
 }  // namespace stanchion

@@ -63,6 +63,9 @@ class FrontWorker {
   /// Moves the contribution block of `front` off this worker's stack, which must hold nothing else.
   Status detach(Index front);
 
+  /// Gives back the memory above what still waits on this worker's stack.
+  Status trim();
+
   /// What this worker counted; valid after the run.
   std::vector<PivotSigns> signs;
   double largest_row_error = 0;

@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <functional>
+#include <limits>
 
 #include "dense/block_lower.hpp"
 
@@ -11,7 +12,7 @@ namespace {
 /// A front below this many operations is not worth sharing among workers.
 constexpr double kShareFlops = 2e7;
 /// Subtrees per worker aimed at, so that the last ones to finish leave little idle time.
-constexpr double kSubtreesPerWorker = 4;
+constexpr double kSubtreesPerWorker = 8;
 
 struct TreeShape {
   std::vector<double> subtree_flops;
@@ -57,38 +58,95 @@ Offset stack_peak(const AssemblyTree& tree, const Fronts& fronts, const std::vec
   return peak;
 }
 
-/// While subtrees run: the largest stacks, one a worker, beside every result so far.
-Offset subtree_phase_peak(const Schedule& schedule, Offset results) {
+/// What waits for each shared front: results of subtrees, and of shared fronts on the shared stack.
+struct Waiting {
+  std::vector<Offset> from_subtrees, on_stack;
+  std::vector<char> shared;
+};
+
+Waiting waiting_for_fronts(const AssemblyTree& tree, const Schedule& schedule) {
+  const auto fronts = static_cast<std::size_t>(tree.fronts);
+  Waiting waiting{std::vector<Offset>(fronts, 0), std::vector<Offset>(fronts, 0), std::vector<char>(fronts, 0)};
+  for (const Index f : schedule.shared_fronts) waiting.shared[static_cast<std::size_t>(f)] = 1;
+  for (const Subtree& subtree : schedule.subtrees) {
+    const Index up = tree.parent[subtree.end - 1];
+    if (up >= 0) waiting.from_subtrees[static_cast<std::size_t>(up)] += subtree.result_doubles;
+  }
+  for (const Index f : schedule.shared_fronts) {
+    const Index up = tree.parent[f];
+    if (up >= 0 && waiting.shared[static_cast<std::size_t>(up)]) {
+      waiting.on_stack[static_cast<std::size_t>(up)] += result_doubles(tree, f);
+    }
+  }
+  return waiting;
+}
+
+/// The largest stacks of subtrees, one a worker, with their scratch.
+Offset worker_doubles(const Schedule& schedule) {
   std::vector<Offset> arenas;
   for (const Subtree& subtree : schedule.subtrees) arenas.push_back(subtree.arena_doubles);
   const auto busy = std::min<std::size_t>(static_cast<std::size_t>(schedule.workers), arenas.size());
   std::partial_sort(arenas.begin(), arenas.begin() + static_cast<std::ptrdiff_t>(busy), arenas.end(), std::greater<>());
-  Offset peak = results;
-  for (std::size_t k = 0; k < busy; ++k) peak += arenas[k] + schedule.panel_doubles;
+  Offset total = 0;
+  for (std::size_t k = 0; k < busy; ++k) total += arenas[k] + schedule.panel_doubles;
+  return total;
+}
+
+/// Bound on everything alive at once: the workers' stacks while a wave's subtrees run, waiting results, and the shared
+/// stack, which keeps its highest mark of a wave until the wave ends.
+Offset peak_of_waves(const AssemblyTree& tree, const Schedule& schedule, const std::vector<Wave>& waves) {
+  const Waiting waiting = waiting_for_fronts(tree, schedule);
+  const Offset workers = worker_doubles(schedule);
+  Offset results = 0, top = 0, touched = 0, peak = 0;
+  for (const Wave& wave : waves) {
+    for (std::size_t k = wave.first_subtree; k < wave.end_subtree; ++k) {
+      results += schedule.subtrees[k].result_doubles;
+    }
+    touched = top;
+    peak = std::max(peak, touched + results + workers);
+    for (std::size_t k = wave.first_shared; k < wave.end_shared; ++k) {
+      const Index f = schedule.shared_fronts[k];
+      touched = std::max(touched, top + front_doubles(tree, f));
+      peak = std::max(peak, touched + results + schedule.panel_doubles);
+      results -= waiting.from_subtrees[static_cast<std::size_t>(f)];
+      top += result_doubles(tree, f) - waiting.on_stack[static_cast<std::size_t>(f)];
+    }
+  }
   return peak;
 }
 
-/// While the shared fronts run: their stack, which keeps its highest mark, beside the results not yet taken in.
-Offset shared_phase_peak(const AssemblyTree& tree, const Schedule& schedule, Offset results) {
-  if (schedule.shared_fronts.empty()) return 0;
-  std::vector<Offset> taken(static_cast<std::size_t>(tree.fronts), 0), waiting(static_cast<std::size_t>(tree.fronts), 0);
-  for (const Subtree& subtree : schedule.subtrees) {
-    const Index up = tree.parent[subtree.end - 1];
-    if (up >= 0) taken[static_cast<std::size_t>(up)] += subtree.result_doubles;
+/// Runs of subtrees and the shared fronts between them, in processing order.
+std::vector<Wave> processing_waves(const Schedule& schedule) {
+  std::vector<Wave> waves;
+  std::size_t subtree = 0, shared = 0;
+  while (subtree < schedule.subtrees.size()) {
+    Wave wave{subtree, subtree, shared, shared};
+    const Index next = shared < schedule.shared_fronts.size() ? schedule.shared_fronts[shared]
+                                                              : schedule.subtrees.back().end;
+    while (subtree < schedule.subtrees.size() && schedule.subtrees[subtree].first < next) ++subtree;
+    const Index stop = subtree < schedule.subtrees.size() ? schedule.subtrees[subtree].first
+                                                          : std::numeric_limits<Index>::max();
+    while (shared < schedule.shared_fronts.size() && schedule.shared_fronts[shared] < stop) ++shared;
+    wave.end_subtree = subtree;
+    wave.end_shared = shared;
+    waves.push_back(wave);
   }
-  std::vector<char> shared(static_cast<std::size_t>(tree.fronts), 0);
-  for (const Index f : schedule.shared_fronts) shared[static_cast<std::size_t>(f)] = 1;
-  Offset top = 0, touched = 0, peak = 0;
-  for (const Index f : schedule.shared_fronts) {
-    const auto i = static_cast<std::size_t>(f);
-    touched = std::max(touched, top + front_doubles(tree, f));
-    peak = std::max(peak, touched + results);
-    results -= taken[i];
-    top += result_doubles(tree, f) - waiting[i];
-    const Index up = tree.parent[f];
-    if (up >= 0 && shared[static_cast<std::size_t>(up)]) waiting[static_cast<std::size_t>(up)] += result_doubles(tree, f);
-  }
-  return peak + schedule.panel_doubles;
+  return waves;
+}
+
+/// Memory below which balance matters more, in doubles, and the share of it that waves must save.
+constexpr Offset kSmallPeak = Offset{100} << 17;
+constexpr double kWorthSaving = 0.85;
+
+void choose_waves(const AssemblyTree& tree, Schedule& schedule) {
+  schedule.waves = {{0, schedule.subtrees.size(), 0, schedule.shared_fronts.size()}};
+  schedule.peak_doubles = peak_of_waves(tree, schedule, schedule.waves);
+  if (schedule.shared_fronts.empty() || schedule.peak_doubles < kSmallPeak) return;
+  std::vector<Wave> many = processing_waves(schedule);
+  const Offset peak = peak_of_waves(tree, schedule, many);
+  if (static_cast<double>(peak) > kWorthSaving * static_cast<double>(schedule.peak_doubles)) return;
+  schedule.waves = std::move(many);
+  schedule.peak_doubles = peak;
 }
 
 }  // namespace
@@ -123,7 +181,6 @@ Schedule make_schedule(const AssemblyTree& tree, int workers) {
   std::sort(schedule.subtrees.begin(), schedule.subtrees.end(),
             [](const Subtree& a, const Subtree& b) { return a.first < b.first; });
 
-  Offset results = 0;
   std::vector<Index> fronts;
   std::vector<char> inside(static_cast<std::size_t>(tree.fronts), 0);
   for (Subtree& subtree : schedule.subtrees) {
@@ -135,7 +192,6 @@ Schedule make_schedule(const AssemblyTree& tree, int workers) {
     subtree.arena_doubles = stack_peak(tree, fronts, inside);
     subtree.result_doubles = result_doubles(tree, subtree.end - 1);
     schedule.worker_arena_doubles = std::max(schedule.worker_arena_doubles, subtree.arena_doubles);
-    results += subtree.result_doubles;
     for (const Index f : fronts) inside[static_cast<std::size_t>(f)] = 0;
   }
   Index largest = 0, widest = 0;
@@ -146,7 +202,7 @@ Schedule make_schedule(const AssemblyTree& tree, int workers) {
   }
   schedule.shared_arena_doubles = stack_peak(tree, schedule.shared_fronts, shared);
   schedule.panel_doubles = Offset{largest} * std::min<Index>(widest, kFrontBlock);
-  schedule.peak_doubles = std::max(subtree_phase_peak(schedule, results), shared_phase_peak(tree, schedule, results));
+  choose_waves(tree, schedule);
   return schedule;
 }
 
