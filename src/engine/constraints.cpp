@@ -114,6 +114,8 @@ Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness,
   if (!found.ok()) return found.status();
   outcome.work.factorizations += found->factorizations;
   outcome.timings.factor += found->seconds;
+  outcome.risk = own.risk;
+  outcome.events = std::move(own.events);
   if (found->certificate.level == Level::kNone) {
     rank.least = 0;
     rank.most = distinct;

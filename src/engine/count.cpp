@@ -113,12 +113,15 @@ class Counter {
     }
     ModelInput massless;
     massless.stiffness = principal_submatrix(model.stiffness, facts.massless);
-    Outcome scratch;
+    Outcome scratch = outcome_;  // the document's digests key the random vectors; its risk goes on
+    scratch.work.factorizations = 0;
     auto pencil = PreparedPencil::make(massless, false, request_, context_, pool_, scratch);
     if (!pencil.ok()) return pencil.status();
     auto found = pencil->certify(0, true, 0, pool_, scratch);
     if (!found.ok()) return found.status();
     outcome_.work.factorizations += scratch.work.factorizations;
+    outcome_.risk = scratch.risk;
+    outcome_.events = std::move(scratch.events);
     if (found->certificate.level == Level::kNone || found->inertia.zero > 0) {
       mass_semidefinite_ = false;
       warn("massless-and-weightless",

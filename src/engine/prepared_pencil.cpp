@@ -125,7 +125,8 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   pencil.resolution_ = request.resolution;
   pencil.memory_cap_ = request.memory_cap_bytes;
   pencil.extended_ = request.precision == Precision::kExtended;
-  pencil.risk_ = std::make_shared<RiskBudget>(request.risk);
+  // One document, one budget: matrices that were certified before this one have charged it already.
+  pencil.risk_ = std::make_shared<RiskBudget>(request.risk, outcome.risk, static_cast<Index>(outcome.events.size()));
   pencil.seed_ = mixed_seed(request.seed, outcome.inputs);
   pencil.factor_options_.seed = pencil.seed_;
   pencil.factor_options_.progress = context.progress;

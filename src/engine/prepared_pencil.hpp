@@ -18,7 +18,8 @@ namespace stanchion {
 class PreparedPencil {
  public:
   /// Takes the matrices out of `model`. `with_identity`: the second member is I (shifts of K alone).
-  /// Fills timings, work and the memory forecast of `outcome`, and refuses what the cap cannot hold.
+  /// Fills timings, work and the memory forecast of `outcome`, and refuses what the cap cannot hold. Goes on with the
+  /// risk that `outcome` has spent: one document, one budget.
   static Result<PreparedPencil> make(ModelInput& model, bool with_identity, const Request& request,
                                      const RunContext& context, ThreadPool& pool, Outcome& outcome);
 

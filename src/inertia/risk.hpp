@@ -10,8 +10,10 @@ namespace stanchion {
 /// charged too. Not thread safe: one document, one budget.
 class RiskBudget {
  public:
-  /// `risk` in (0, 1).
-  explicit RiskBudget(double risk) : risk_(risk) {}
+  /// `risk` in (0, 1). Goes on where earlier parts of the same document left off, with what they `spent` in how many
+  /// `attempts`.
+  explicit RiskBudget(double risk, double spent = 0, Index attempts = 0)
+      : risk_(risk), spent_(spent), attempts_(attempts) {}
 
   /// Charges the next attempt and returns what it may fail with; its number is attempts() afterwards.
   double charge();
@@ -21,8 +23,8 @@ class RiskBudget {
   Index attempts() const { return attempts_; }
 
  private:
-  double risk_, spent_ = 0;
-  Index attempts_ = 0;
+  double risk_, spent_;
+  Index attempts_;
 };
 
 /// g with P(max over `vectors` of ||B x|| <= g ||B||) <= failure for standard Gaussian x and any matrix B: the largest

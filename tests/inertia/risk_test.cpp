@@ -64,5 +64,15 @@ TEST(CounterRandom, StreamsOfDifferentKeysDiffer) {
   EXPECT_NE(CounterRandom::combine(1, 2), CounterRandom::combine(2, 1));
 }
 
+TEST(RiskBudget, GoesOnWhereAnEarlierPartOfTheDocumentStopped) {
+  RiskBudget whole(1e-6), first(1e-6);
+  for (int j = 0; j < 3; ++j) first.charge();
+  RiskBudget second(1e-6, first.spent(), first.attempts());
+  for (int j = 0; j < 3; ++j) whole.charge();
+  EXPECT_EQ(second.charge(), whole.charge());
+  EXPECT_EQ(second.spent(), whole.spent());
+  EXPECT_EQ(second.attempts(), whole.attempts());
+}
+
 }  // namespace
 }  // namespace stanchion

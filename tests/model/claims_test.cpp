@@ -1,0 +1,171 @@
+#include "model/claims.hpp"
+
+#include <gtest/gtest.h>
+
+namespace stanchion {
+namespace {
+
+constexpr Index kRows = 10;
+
+/// A check by two offsets: `negative` and `zero` directions at the resolution `c`, both errors `e`.
+Outcome check_of(Index negative, Index zero, double c = 1e-12, double e = 1e-13) {
+  Outcome outcome;
+  outcome.rows_analysed = kRows;
+  outcome.scaling_sha256 = "one scaling";
+  CheckOutcome& check = outcome.check.emplace();
+  check.inertia = {negative, zero, kRows - negative - zero, 0};
+  check.verdict = negative > 0 ? Verdict::kIndefinite
+                  : zero > 0   ? Verdict::kPositiveSemidefinite
+                               : Verdict::kPositiveDefinite;
+  check.certificate.level = Level::kProved;
+  check.certificate.method = "offsets";
+  check.certificate.resolution = c;
+  check.certificate.error_bound = e;
+  check.certificate.runs = {{c, negative + zero, e}, {-c, negative, e}};
+  return outcome;
+}
+
+/// A check by the relative test: signs only.
+Outcome relative_check_of(Index negative) {
+  Outcome outcome = check_of(negative, 0);
+  Certificate& certificate = outcome.check->certificate;
+  certificate.level = Level::kStatistical;
+  certificate.method = "relative";
+  certificate.resolution.reset();
+  certificate.error_bound.reset();
+  certificate.runs.clear();
+  return outcome;
+}
+
+Outcome count_of(Index least, Index most) {
+  Outcome outcome;
+  outcome.rows_analysed = kRows;
+  ShiftCount& count = outcome.count.emplace().counts.emplace_back();
+  count.shift = 2.5;
+  count.meaning = "eigenvalues below the shift";
+  count.below_range = {least, most};
+  count.certificate.level = Level::kProved;
+  if (least == most) count.below = least;
+  return outcome;
+}
+
+Agreement between(const Outcome& claimed, const Outcome& found) {
+  return worst(compare_claims(claimed, found));
+}
+
+TEST(Claims, TheSameAnswerAgrees) {
+  EXPECT_EQ(between(check_of(2, 1), check_of(2, 1)), Agreement::kAgreed);
+  EXPECT_EQ(between(relative_check_of(2), check_of(2, 0)), Agreement::kAgreed);
+  EXPECT_EQ(between(check_of(2, 0), relative_check_of(2)), Agreement::kAgreed);
+  EXPECT_EQ(between(count_of(3, 3), count_of(3, 3)), Agreement::kAgreed);
+}
+
+TEST(Claims, SignsThatExcludeEachOtherContradict) {
+  EXPECT_EQ(between(check_of(2, 0), check_of(3, 0)), Agreement::kContradicted);
+  EXPECT_EQ(between(check_of(3, 0), check_of(2, 0)), Agreement::kContradicted);
+  EXPECT_EQ(between(relative_check_of(1), check_of(2, 3)), Agreement::kContradicted);
+  Outcome scaled_otherwise = check_of(3, 0);
+  scaled_otherwise.scaling_sha256 = "another scaling";
+  EXPECT_EQ(between(check_of(2, 0), scaled_otherwise), Agreement::kContradicted);
+}
+
+TEST(Claims, MoreDecidedAgreesLessDecidedDoesNotRepeat) {
+  EXPECT_EQ(between(check_of(2, 1, 1e-9, 1e-10), relative_check_of(3)), Agreement::kAgreed);
+  EXPECT_EQ(between(relative_check_of(3), check_of(2, 1)), Agreement::kNotRepeated);
+  EXPECT_EQ(between(count_of(2, 4), count_of(3, 3)), Agreement::kAgreed);
+  EXPECT_EQ(between(count_of(3, 3), count_of(2, 4)), Agreement::kNotRepeated);
+}
+
+TEST(Claims, ZeroDirectionsAreHeldAgainstTheResolution) {
+  // Seven zero directions within 1e-12, but the seventh eigenvalue exceeds 5e-12.
+  EXPECT_EQ(between(check_of(0, 7), check_of(0, 6, 6e-12)), Agreement::kContradicted);
+  // Five within 1e-12, yet the sixth lies below 5e-13.
+  EXPECT_EQ(between(check_of(0, 5), check_of(0, 6, 4e-13, 1e-14)), Agreement::kContradicted);
+  // Offsets too near to each other to tell.
+  EXPECT_EQ(between(check_of(0, 5), check_of(0, 6)), Agreement::kNotRepeated);
+  Outcome scaled_otherwise = check_of(0, 6, 6e-12);
+  scaled_otherwise.scaling_sha256 = "another scaling";
+  EXPECT_EQ(between(check_of(0, 7), scaled_otherwise), Agreement::kAgreed);
+}
+
+TEST(Claims, TellingResolutionsTell) {
+  const Outcome claimed = check_of(0, 7, 1e-12, 1e-13), found = check_of(0, 6, 1e-12, 1e-13);
+  const auto resolutions = telling_resolutions(claimed.check->certificate, found.check->certificate);
+  ASSERT_EQ(resolutions.size(), 2U);
+  EXPECT_EQ(between(claimed, check_of(0, 6, resolutions[0])), Agreement::kContradicted);
+  EXPECT_EQ(between(check_of(0, 5), check_of(0, 6, resolutions[1])), Agreement::kContradicted);
+  EXPECT_TRUE(telling_resolutions(relative_check_of(1).check->certificate, {}).empty());
+}
+
+TEST(Claims, AClaimMayContradictItself) {
+  const Outcome truth = check_of(2, 1);
+  Outcome wrong_sum = truth;
+  wrong_sum.check->inertia.negative = 1;
+  EXPECT_EQ(between(wrong_sum, truth), Agreement::kContradicted);
+  Outcome wrong_verdict = truth;
+  wrong_verdict.check->verdict = Verdict::kPositiveDefinite;
+  EXPECT_EQ(between(wrong_verdict, truth), Agreement::kContradicted);
+  Outcome not_from_its_runs = truth;
+  not_from_its_runs.check->inertia = {2, 2, kRows - 4, 0};
+  EXPECT_EQ(between(not_from_its_runs, truth), Agreement::kContradicted);
+  Outcome count_beside_its_range = count_of(3, 3);
+  count_beside_its_range.count->counts[0].below = 4;
+  EXPECT_EQ(between(count_beside_its_range, count_of(3, 3)), Agreement::kContradicted);
+}
+
+TEST(Claims, NothingClaimedOrNothingFoundIsNotRepeated) {
+  Outcome nothing = check_of(0, 0);
+  nothing.check->certificate.level = Level::kNone;
+  EXPECT_EQ(between(nothing, check_of(0, 0)), Agreement::kNotRepeated);
+  EXPECT_EQ(between(check_of(0, 0), nothing), Agreement::kNotRepeated);
+  EXPECT_EQ(between(count_of(3, 3), {}), Agreement::kNotRepeated);
+  Outcome other_meaning = count_of(3, 3);
+  other_meaning.count->counts[0].meaning = "negative directions at the shift";
+  EXPECT_EQ(between(count_of(3, 3), other_meaning), Agreement::kNotRepeated);
+}
+
+TEST(Claims, CountsContradictByRange) {
+  EXPECT_EQ(between(count_of(3, 3), count_of(4, 4)), Agreement::kContradicted);
+  EXPECT_EQ(between(count_of(1, 3), count_of(4, 5)), Agreement::kContradicted);
+  EXPECT_EQ(between(count_of(4, 11), count_of(4, 4)), Agreement::kContradicted) << "more than there are rows";
+}
+
+TEST(Claims, ConstrainedStructuresAreComparedToo) {
+  Outcome claimed = check_of(2, 0), found = claimed;
+  claimed.check->constrained.emplace().rank = 2;
+  EXPECT_EQ(between(claimed, found), Agreement::kNotRepeated);
+  found.check->constrained.emplace().rank = 1;
+  EXPECT_EQ(between(claimed, found), Agreement::kContradicted);
+  found.check->constrained->rank = 2;
+  EXPECT_EQ(between(claimed, found), Agreement::kNotRepeated) << "no inertia on the constraints";
+  claimed.check->constrained->inertia = found.check->constrained->inertia = Inertia{0, 0, 6, 0};
+  EXPECT_EQ(between(claimed, found), Agreement::kAgreed);
+  claimed.check->constrained->inertia = Inertia{1, 0, 5, 0};
+  EXPECT_EQ(between(claimed, found), Agreement::kContradicted);
+}
+
+TEST(Claims, RangesOnTheConstraints) {
+  Outcome claimed = check_of(2, 0), found = claimed;
+  claimed.check->constrained.emplace().negative_range = {0, 1};
+  found.check->constrained.emplace().negative_range = {0, 2};
+  EXPECT_EQ(between(claimed, found), Agreement::kNotRepeated);
+  found.check->constrained->negative_range = {1, 1};
+  EXPECT_EQ(between(claimed, found), Agreement::kAgreed);
+  found.check->constrained->negative_range = {2, 2};
+  EXPECT_EQ(between(claimed, found), Agreement::kContradicted);
+}
+
+TEST(Claims, VerdictsForAllRoundings) {
+  Outcome claimed = check_of(0, 0), found = claimed;
+  claimed.check->verdict_for_digits = found.check->verdict_for_digits = Verdict::kPositiveDefinite;
+  EXPECT_EQ(between(claimed, found), Agreement::kAgreed);
+  found.check->verdict_for_digits = Verdict::kPositiveSemidefinite;
+  EXPECT_EQ(between(claimed, found), Agreement::kNotRepeated);
+  found.check->verdict_for_digits = Verdict::kIndefinite;
+  EXPECT_EQ(between(claimed, found), Agreement::kContradicted);
+  found.check->verdict_for_digits.reset();
+  EXPECT_EQ(between(claimed, found), Agreement::kNotRepeated);
+}
+
+}  // namespace
+}  // namespace stanchion
