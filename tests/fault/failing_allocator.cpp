@@ -40,6 +40,17 @@ void* operator new(std::size_t size) {
 void* operator new[](std::size_t size) {
   return allocate(size, 0);
 }
+// The sanitizers bring their own of these, which our delete must not meet.
+void* operator new(std::size_t size, const std::nothrow_t&) noexcept {
+  try {
+    return allocate(size, 0);
+  } catch (const std::bad_alloc&) {
+    return nullptr;
+  }
+}
+void* operator new[](std::size_t size, const std::nothrow_t& none) noexcept {
+  return operator new(size, none);
+}
 void* operator new(std::size_t size, std::align_val_t alignment) {
   return allocate(size, static_cast<std::size_t>(alignment));
 }
@@ -56,6 +67,12 @@ void operator delete(void* block, std::size_t) noexcept {
   release(block);
 }
 void operator delete[](void* block, std::size_t) noexcept {
+  release(block);
+}
+void operator delete(void* block, const std::nothrow_t&) noexcept {
+  release(block);
+}
+void operator delete[](void* block, const std::nothrow_t&) noexcept {
   release(block);
 }
 void operator delete(void* block, std::align_val_t) noexcept {
