@@ -148,7 +148,7 @@ TEST(SwapSymmetric, InterchangesRowsColumnsAndCompanions) {
     for (Index k = 0; k < 300; ++k)
       front.row_error[static_cast<std::size_t>(k)] = front.growth[static_cast<std::size_t>(k)] = k;
     swap_symmetric(front.front(), i, j, 0);
-    const auto image = [&](Index k) { return k == i ? j : (k == j ? i : k); };
+    const auto image = [a = i, b = j](Index k) { return k == a ? b : (k == b ? a : k); };
     for (Index c = 0; c < 300; ++c) {
       EXPECT_EQ(front.label[static_cast<std::size_t>(c)], image(c));
       EXPECT_EQ(front.row_error[static_cast<std::size_t>(c)], image(c));

@@ -216,7 +216,8 @@ TEST(AddGrowthAndImage, EqualsThePlainLoopToRounding) {
     const auto weight = random_values(random, static_cast<std::size_t>(columns));
     const auto step = random_values(random, static_cast<std::size_t>(columns));
     std::vector<double> growth(static_cast<std::size_t>(rows) + 1, kGuard), image(growth);
-    set.add_growth_and_image(a.data(), leading, rows, columns, weight.data(), step.data(), growth.data(), image.data());
+    set.add_growth_and_image(a.data(), leading, rows, columns, weight.data(), step.data(), growth.data(),
+                             image.data());
     for (Index i = 0; i < rows; ++i) {
       double expected_growth = kGuard, expected_image = kGuard, size = std::fabs(kGuard);
       for (Index k = 0; k < columns; ++k) {
@@ -245,8 +246,8 @@ TEST(KernelSets, AgreeWithTheReferenceToRounding) {
     for (int s = 0; s < count; ++s) {
       std::vector<double> l(w.size()), sum(8, 0.0), signed_sum(8, 0.0), sign(w.size(), 1.0);
       sets[s]->divide_by_pivots(w.data(), rows, l.data(), rows, rows, 8,
-                                {d.diagonal.data(), d.off_diagonal.data(), d.kind.data()}, sign.data(), sum.data(),
-                                signed_sum.data());
+                                {d.diagonal.data(), d.off_diagonal.data(), d.kind.data()}, sign.data(),
+                                sum.data(), signed_sum.data());
       if (s == 0) expected = l;
       double largest = 0;
       for (const double v : expected) largest = std::max(largest, std::fabs(v));
