@@ -238,6 +238,17 @@ ClaimComparison compare_count(const ShiftCount& claimed, const ShiftCount& found
   return not_repeated(fmt::format("the second path leaves a wider range: {}", in_words(found)));
 }
 
+/// What was said of all counts together must be said again; word for word, for it follows from numbers.
+std::vector<ClaimComparison> compare_sentences(const CountOutcome& claimed, const CountOutcome& found) {
+  std::vector<ClaimComparison> missing;
+  for (const std::string& sentence : claimed.sentences) {
+    if (std::find(found.sentences.begin(), found.sentences.end(), sentence) != found.sentences.end())
+      continue;
+    missing.push_back({{}, Agreement::kNotRepeated, sentence, "-", "the second path does not say so"});
+  }
+  return missing;
+}
+
 }  // namespace
 
 std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcome& found) {
@@ -256,6 +267,9 @@ std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcom
       comparison.claimed = in_words(old_count);
       comparison.found = in_words(new_count);
       comparisons.push_back(std::move(comparison));
+    }
+    for (ClaimComparison& missing : compare_sentences(*claimed.count, *found.count)) {
+      comparisons.push_back(std::move(missing));
     }
   }
   return comparisons;

@@ -243,6 +243,10 @@ CertificateDocument document_of(const Member& root) {
   outcome.struck_sha256 = unless_null(root.at("struck").at("sha256"), text_of).value_or("");
   outcome.scaling_sha256 = unless_null(root.at("scaling").at("sha256"), text_of).value_or("");
   read_claims(root.at("claims"), outcome);
+  if (outcome.count) {
+    for (const Member& sentence : root.at("sentences").items())
+      outcome.count->sentences.push_back(sentence.text());
+  }
   document.request.risk = outcome.risk_allowed = root.at("risk").at("allowed").real();
   outcome.risk = root.at("risk").at("spent").real();
   document.request.seed = outcome.seed = root.at("seed").natural();

@@ -2,6 +2,8 @@
 
 #include <fmt/format.h>
 
+#include <algorithm>
+
 #include "model/version.hpp"
 #include "report/json_parts.hpp"
 #include "report/numbers.hpp"
@@ -47,12 +49,20 @@ std::string headline(Agreement agreement, std::size_t claims) {
   return "Not repeated: the second path could not say as much as the certificate, and did not contradict it.";
 }
 
+/// Whether any statement rests on random vectors: only then can chance have a part in a contradiction.
+bool is_statistical(const Outcome& outcome) {
+  if (outcome.check) return outcome.check->certificate.level == Level::kStatistical;
+  return outcome.count &&
+         std::any_of(outcome.count->counts.begin(), outcome.count->counts.end(),
+                     [](const ShiftCount& count) { return count.level == Level::kStatistical; });
+}
+
 void write_alarm(Page& page, const RecheckReport& report) {
   page.sentence(
       "The certificate was altered, or the machine or the program made a mistake, then or now. Rely on "
       "neither "
       "answer: run `stanchion selftest`, then the original command again on another machine.");
-  if (report.claimed.risk > 0 || report.found.risk > 0) {
+  if (is_statistical(report.claimed) || is_statistical(report.found)) {
     page.sentence(fmt::format("By chance alone this happens with probability at most {}.",
                               rounded(report.claimed.risk + report.found.risk)));
   }

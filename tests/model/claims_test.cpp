@@ -130,6 +130,17 @@ TEST(Claims, CountsContradictByRange) {
   EXPECT_EQ(between(count_of(4, 11), count_of(4, 4)), Agreement::kContradicted) << "more than there are rows";
 }
 
+TEST(Claims, WhatFollowsFromTheCountsMustBeSaidAgain) {
+  Outcome claimed = count_of(3, 3), found = claimed;
+  claimed.count->sentences = {"K + f G is positive definite at every f in [0, 1.5]."};
+  const auto comparisons = compare_claims(claimed, found);
+  ASSERT_EQ(comparisons.size(), 2U);
+  EXPECT_EQ(comparisons[0].agreement, Agreement::kAgreed);
+  EXPECT_EQ(comparisons[1].agreement, Agreement::kNotRepeated);
+  found.count->sentences = {"Something else.", claimed.count->sentences[0]};
+  EXPECT_EQ(between(claimed, found), Agreement::kAgreed);
+}
+
 TEST(Claims, ConstrainedStructuresAreComparedToo) {
   Outcome claimed = check_of(2, 0), found = claimed;
   claimed.check->constrained.emplace().rank = 2;

@@ -103,6 +103,13 @@ class AgreedTest(CertificateTest):
         self.assertEqual([claim["result"] for claim in document["claims"]], ["agreed"] * 3)
         self.assertEqual([claim["shift"] for claim in document["claims"]], [0.5, 2.5, -1.0])
 
+    def test_what_follows_from_the_counts(self):
+        geometric = self.matrix("G.mtx", 60, diagonal([-1] * 60))
+        self.certify(0, "count", self.matrix("K.mtx", 60, chain(60, held=2)), "--geometric", geometric, "--at", "0.001")
+        self.recheck(0)
+        self.tamper(lambda document: document["sentences"].append("K + f G is positive definite at every f."))
+        self.assertEqual([claim["result"] for claim in self.recheck(3)["claims"]], ["agreed", "not_repeated"])
+
     def test_a_range_of_counts(self):
         self.certify(3, "count", self.matrix("D.mtx", 3, diagonal([1, 2, 3])), "--at", "2")
         claim, = self.recheck(0)["claims"]

@@ -58,6 +58,7 @@ TEST(CertificateJson, WhatIsClaimedReadsBack) {
     }
     if (back.count) {
       EXPECT_EQ(back.count->counts.size(), outcome.count->counts.size());
+      EXPECT_EQ(back.count->sentences, outcome.count->sentences);
       EXPECT_EQ(back.count->counts.back().below_range, outcome.count->counts.back().below_range);
       EXPECT_EQ(back.count->counts.front().holds_outside, outcome.count->counts.front().holds_outside);
     }
