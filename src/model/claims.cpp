@@ -6,71 +6,12 @@
 #include <cmath>
 #include <limits>
 
+#include "model/claim_consistency.hpp"
+#include "model/claim_facts.hpp"
 #include "model/names.hpp"
 
 namespace stanchion {
 namespace {
-
-constexpr double kInfinity = std::numeric_limits<double>::infinity();
-
-/// "At least" or "at most" `count` eigenvalues of the scaled matrix lie below `at`.
-struct Fact {
-  double at = 0;
-  Offset count = 0;
-};
-
-struct Facts {
-  std::vector<Fact> least, most;
-};
-
-/// c - e and c + e, rounded outwards.
-double below(double offset, double error) {
-  return std::nextafter(offset - error, -kInfinity);
-}
-double above(double offset, double error) {
-  return std::nextafter(offset + error, kInfinity);
-}
-
-/// Every factorization of A_s - o I with m negative pivots and error e: lambda_m < o + e, lambda_(m+1) >= o -
-/// e.
-Facts facts_of_runs(const Certificate& certificate) {
-  Facts facts;
-  for (const OffsetRun& run : certificate.runs) {
-    if (!run.error_bound) continue;
-    facts.least.push_back({above(run.offset, *run.error_bound), run.negative});
-    facts.most.push_back({below(run.offset, *run.error_bound), run.negative});
-  }
-  return facts;
-}
-
-/// What the inertia itself says: signs about 0, zero directions about the resolution.
-Facts facts_of_inertia(const Inertia& inertia, const Certificate& certificate, Index rows, bool signs_only) {
-  Facts facts{{{0, inertia.negative}}, {{0, Offset{rows} - inertia.positive}}};
-  if (signs_only || inertia.zero == 0 || !certificate.resolution) return facts;
-  const double reach = above(*certificate.resolution, certificate.error_bound.value_or(0));
-  facts.least.push_back({reach, Offset{inertia.negative} + inertia.zero});
-  facts.most.push_back({-reach, Offset{rows} - inertia.positive - inertia.zero});
-  return facts;
-}
-
-void append(Facts& facts, const Facts& more) {
-  facts.least.insert(facts.least.end(), more.least.begin(), more.least.end());
-  facts.most.insert(facts.most.end(), more.most.begin(), more.most.end());
-}
-
-bool cannot_both_be_true(const Facts& one, const Facts& other) {
-  const auto clash = [](const std::vector<Fact>& least, const std::vector<Fact>& most) {
-    return std::any_of(least.begin(), least.end(), [&](const Fact& a) {
-      return std::any_of(most.begin(), most.end(),
-                         [&](const Fact& b) { return a.at <= b.at && a.count > b.count; });
-    });
-  };
-  return clash(one.least, other.most) || clash(other.least, one.most);
-}
-
-std::string in_words(const Inertia& inertia) {
-  return fmt::format("{} negative, {} zero, {} positive", inertia.negative, inertia.zero, inertia.positive);
-}
 
 std::string in_words(const CheckOutcome& check) {
   if (check.certificate.level == Level::kNone) return "nothing certified";
@@ -93,40 +34,38 @@ ClaimComparison agreed() {
   return {{}, Agreement::kAgreed, {}, {}, {}};
 }
 
-Verdict verdict_that_follows(const Inertia& inertia) {
-  if (inertia.undecided > 0) return Verdict::kUnresolved;
-  if (inertia.negative > 0 && inertia.positive > 0) return Verdict::kIndefinite;
-  if (inertia.negative > 0)
-    return inertia.zero > 0 ? Verdict::kNegativeSemidefinite : Verdict::kNegativeDefinite;
-  return inertia.zero > 0 ? Verdict::kPositiveSemidefinite : Verdict::kPositiveDefinite;
-}
-
-/// Offsets give exactly n - m positive directions from a run above its bound, m negative ones from one below.
-bool follows_from_runs(const CheckOutcome& check, Index rows) {
-  const auto& runs = check.certificate.runs;
-  const auto given_by = [&](int side, Index many) {
-    return std::any_of(runs.begin(), runs.end(), [&](const OffsetRun& run) {
-      return run.error_bound && side * run.offset > *run.error_bound && run.negative == many;
+/// Factorizations at one offset that give different numbers: an eigenvalue lies at it, or one of them is
+/// wrong.
+bool differ_at_an_offset(const Certificate& claimed, const Certificate& found) {
+  return std::any_of(claimed.runs.begin(), claimed.runs.end(), [&](const OffsetRun& one) {
+    return std::any_of(found.runs.begin(), found.runs.end(), [&](const OffsetRun& other) {
+      return one.offset == other.offset && one.negative != other.negative;
     });
-  };
-  const bool positive = check.inertia.positive == 0 || given_by(1, rows - check.inertia.positive);
-  return positive && (check.inertia.negative == 0 || given_by(-1, check.inertia.negative));
+  });
 }
 
-/// No matrix at all can satisfy such a claim, or the claim is not what its own factorizations give.
-std::optional<std::string> contradiction_within(const CheckOutcome& check, Index rows) {
-  const Inertia& i = check.inertia;
-  if (Offset{i.negative} + i.zero + i.positive + i.undecided != rows) {
-    return fmt::format("the certificate contradicts itself: {} in {} equations", in_words(i), rows);
+/// The bound for K itself is that of the scaled matrix times a number that the scaling gives.
+bool bounds_for_k_differ(const Certificate& claimed, const Certificate& found) {
+  if (!claimed.smallest_eigenvalue_above || !claimed.smallest_eigenvalue_of_k_above) {
+    return claimed.smallest_eigenvalue_of_k_above.has_value();
   }
-  if (check.verdict != verdict_that_follows(i)) {
-    return fmt::format("the certificate contradicts itself: {} with {}", name_of(check.verdict), in_words(i));
+  if (!found.smallest_eigenvalue_above || !found.smallest_eigenvalue_of_k_above) return false;
+  const double from = *claimed.smallest_eigenvalue_of_k_above * *found.smallest_eigenvalue_above;
+  const double to = *found.smallest_eigenvalue_of_k_above * *claimed.smallest_eigenvalue_above;
+  return !(std::fabs(from - to) <= 1e-9 * std::fabs(to));
+}
+
+/// What scaled matrices that are alike allow to compare beyond signs.
+std::optional<ClaimComparison> compare_factorizations(const Certificate& claimed, const Certificate& found) {
+  if (cannot_both_be_true(facts_of_runs(claimed), facts_of_runs(found))) {
+    return contradicted("the factorizations of the two exclude each other");
   }
-  Facts all = facts_of_inertia(i, check.certificate, rows, false);
-  append(all, facts_of_runs(check.certificate));
-  const bool supported = check.certificate.method != "offsets" || follows_from_runs(check, rows);
-  if (supported && !cannot_both_be_true(all, all)) return std::nullopt;
-  return fmt::format("the certificate contradicts itself: its factorizations do not give {}", in_words(i));
+  if (bounds_for_k_differ(claimed, found)) {
+    return contradicted(
+        "the bound on the smallest eigenvalue of K does not follow from that of the scaled matrix");
+  }
+  if (!differ_at_an_offset(claimed, found)) return std::nullopt;
+  return not_repeated("factorizations at the same offset give different numbers");
 }
 
 /// Inertia against inertia, about 0 only.
@@ -187,6 +126,9 @@ ClaimComparison compare_inertia(const CheckOutcome& claimed, const CheckOutcome&
   if (cannot_both_be_true(old_facts, new_facts)) {
     return contradicted(fmt::format("{} against {}", in_words(claimed.inertia), in_words(found.inertia)));
   }
+  if (same_scaling) {
+    if (auto difference = compare_factorizations(claimed.certificate, found.certificate)) return *difference;
+  }
   return compare_signs(claimed.inertia, found.inertia, "");
 }
 
@@ -221,18 +163,17 @@ ClaimComparison compare_count(const ShiftCount& claimed, const ShiftCount& found
   const auto [least, most] = claimed.below_range;
   if (claimed.certificate.level == Level::kNone)
     return not_repeated("the certificate claims nothing at this shift");
-  if (least > most || most > rows || (claimed.below && (*claimed.below != least || *claimed.below != most))) {
-    return contradicted("the certificate contradicts itself: its count and its range do not agree");
-  }
+  if (auto why = contradiction_within(claimed, rows)) return contradicted(*why);
   if (found.certificate.level == Level::kNone)
     return not_repeated("the second path certifies nothing at this shift");
   if (claimed.meaning != found.meaning) {
     return not_repeated(fmt::format("the second path counts something else: {}", found.meaning));
   }
-  const bool disjoint = found.below_range.first > most || found.below_range.second < least;
-  if (disjoint || (same_scaling && cannot_both_be_true(facts_of_runs(claimed.certificate),
-                                                       facts_of_runs(found.certificate)))) {
+  if (found.below_range.first > most || found.below_range.second < least) {
     return contradicted(fmt::format("{} against {}", in_words(claimed), in_words(found)));
+  }
+  if (same_scaling) {
+    if (auto difference = compare_factorizations(claimed.certificate, found.certificate)) return *difference;
   }
   if (found.below_range.first >= least && found.below_range.second <= most) return agreed();
   return not_repeated(fmt::format("the second path leaves a wider range: {}", in_words(found)));

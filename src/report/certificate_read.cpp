@@ -1,92 +1,20 @@
 // A certificate read back. Nothing in the file is trusted: every member is looked at before it is used.
 #include <fmt/format.h>
 
+#include <algorithm>
 #include <cmath>
-#include <limits>
-#include <nlohmann/json.hpp>
 
 #include "model/input_files.hpp"
 #include "model/names.hpp"
 #include "report/certificate_json.hpp"
+#include "report/json_member.hpp"
 
 namespace stanchion {
 namespace {
 
-using Json = nlohmann::json;
-
-/// What is wrong with the file, thrown inside this file only and caught in read_certificate.
-struct BadMember {
-  std::string message;
-};
-
-/// One value of the document with the way to it, for messages: "claims/0/inertia/negative".
-class Member {
- public:
-  Member(const Json& value, std::string way) : value_(value), way_(std::move(way)) {}
-
-  Member at(const std::string& key) const {
-    const std::string way = way_.empty() ? key : way_ + "/" + key;
-    if (!value_.is_object() || !value_.contains(key)) throw BadMember{fmt::format("'{}' is missing", way)};
-    return {value_[key], way};
-  }
-
-  std::vector<Member> items() const {
-    if (!value_.is_array()) wrong("no list");
-    std::vector<Member> list;
-    for (std::size_t k = 0; k < value_.size(); ++k)
-      list.emplace_back(value_[k], fmt::format("{}/{}", way_, k));
-    return list;
-  }
-
-  bool is_null() const { return value_.is_null(); }
-
-  std::string text() const {
-    if (!value_.is_string()) wrong("no text");
-    return value_.get<std::string>();
-  }
-
-  bool truth() const {
-    if (!value_.is_boolean()) wrong("neither true nor false");
-    return value_.get<bool>();
-  }
-
-  double real() const {
-    if (!value_.is_number() || !std::isfinite(value_.get<double>())) wrong("no number");
-    return value_.get<double>();
-  }
-
-  std::uint64_t natural() const {
-    if (!value_.is_number_unsigned()) wrong("no whole number from 0");
-    return value_.get<std::uint64_t>();
-  }
-
-  Index index() const {
-    if (natural() > static_cast<std::uint64_t>(std::numeric_limits<Index>::max())) wrong("too large");
-    return static_cast<Index>(natural());
-  }
-
-  /// One of the values whose names the documents use.
-  template <class Enum>
-  Enum named(std::initializer_list<Enum> values) const {
-    for (const Enum value : values) {
-      if (text() == name_of(value)) return value;
-    }
-    wrong("none of the known words");
-  }
-
-  [[noreturn]] void wrong(const char* what) const { throw BadMember{fmt::format("'{}' is {}", way_, what)}; }
-
- private:
-  const Json& value_;
-  std::string way_;
-};
-
-/// Nothing for null, else what `read` makes of the member.
-template <class Read>
-auto unless_null(const Member& member, const Read& read) -> std::optional<decltype(read(member))> {
-  if (member.is_null()) return std::nullopt;
-  return read(member);
-}
+using json_parts::BadMember;
+using json_parts::Member;
+using json_parts::unless_null;
 
 double real_of(const Member& member) {
   return member.real();
@@ -123,18 +51,45 @@ std::pair<T, T> pair_of(const Member& member, const Read& read) {
   return {read(both[0]), read(both[1])};
 }
 
+double probability_of(const Member& member) {
+  if (!(member.real() >= 0 && member.real() <= 1)) member.wrong("no probability");
+  return member.real();
+}
+
+double bound_of(const Member& member) {
+  if (!(member.real() >= 0)) member.wrong("negative");
+  return member.real();
+}
+
+/// A text that is one of `words`.
+std::string word_of(const Member& member, std::initializer_list<const char*> words) {
+  const std::string text = member.text();
+  if (std::find(words.begin(), words.end(), text) == words.end()) member.wrong("none of the known words");
+  return text;
+}
+
+std::string method_of(const Member& member) {
+  return word_of(member, {"offsets", "relative"});
+}
+std::string precision_of(const Member& member) {
+  return word_of(member, {"double", "single", "extended"});
+}
+
 Certificate certificate_of(const Member& member) {
   Certificate certificate;
   certificate.level = level_of(member.at("level"));
-  certificate.method = unless_null(member.at("method"), text_of);
-  certificate.precision = unless_null(member.at("precision"), text_of);
-  certificate.resolution = optional_real(member.at("resolution"));
-  certificate.error_bound = optional_real(member.at("error_bound"));
-  certificate.relative_bound = optional_real(member.at("relative_bound"));
-  certificate.failure_probability = optional_real(member.at("failure_probability"));
+  certificate.method = unless_null(member.at("method"), method_of);
+  certificate.precision = unless_null(member.at("precision"), precision_of);
+  certificate.resolution = unless_null(member.at("resolution"), bound_of);
+  certificate.error_bound = unless_null(member.at("error_bound"), bound_of);
+  certificate.relative_bound = unless_null(member.at("relative_bound"), bound_of);
+  certificate.failure_probability = unless_null(member.at("failure_probability"), probability_of);
+  for (const Member& text : member.at("assumptions").items()) certificate.assumptions.push_back(text.text());
+  certificate.smallest_eigenvalue_above = optional_real(member.at("smallest_eigenvalue_above"));
+  certificate.smallest_eigenvalue_of_k_above = optional_real(member.at("smallest_eigenvalue_of_k_above"));
   for (const Member& run : member.at("runs").items()) {
     certificate.runs.push_back(
-        {run.at("offset").real(), run.at("negative").index(), optional_real(run.at("error_bound"))});
+        {run.at("offset").real(), run.at("negative").index(), unless_null(run.at("error_bound"), bound_of)});
   }
   return certificate;
 }
@@ -152,6 +107,7 @@ ConstrainedOutcome constrained_of(const Member& member) {
 
 CheckOutcome check_of(const Member& claim) {
   CheckOutcome check;
+  word_of(claim.at("statement"), {"inertia"});
   check.verdict = verdict_of(claim.at("verdict"));
   check.verdict_for_digits = unless_null(claim.at("verdict_for_all_roundings"), verdict_of);
   check.inertia = inertia_of(claim.at("inertia"));
@@ -162,6 +118,9 @@ CheckOutcome check_of(const Member& claim) {
 
 ShiftCount count_of(const Member& claim) {
   ShiftCount count;
+  word_of(claim.at("statement"), {"count"});
+  count.method = unless_null(claim.at("method"), method_of);
+  count.failure_probability = unless_null(claim.at("failure_probability"), probability_of);
   count.shift = claim.at("shift").real();
   count.below = unless_null(claim.at("below"), index_of);
   count.meaning = claim.at("meaning").text();
@@ -250,7 +209,10 @@ CertificateDocument document_of(const Member& root) {
   document.request.risk = outcome.risk_allowed = root.at("risk").at("allowed").real();
   outcome.risk = root.at("risk").at("spent").real();
   document.request.seed = outcome.seed = root.at("seed").natural();
-  if (outcome.count && outcome.count->counts.size() != document.request.shifts.size()) {
+  if (outcome.count &&
+      !std::equal(document.request.shifts.begin(), document.request.shifts.end(),
+                  outcome.count->counts.begin(), outcome.count->counts.end(),
+                  [](double shift, const ShiftCount& count) { return shift == count.shift; })) {
     root.at("claims").wrong("not one claim a shift");
   }
   return document;
@@ -264,7 +226,7 @@ Status bad_certificate(std::string message, const std::string& path) {
 }  // namespace
 
 Result<CertificateDocument> read_certificate(std::string_view text, const std::string& path) {
-  const Json json = Json::parse(text.begin(), text.end(), nullptr, false);
+  const auto json = nlohmann::json::parse(text.begin(), text.end(), nullptr, false);
   if (json.is_discarded()) return bad_certificate("this is not JSON", path);
   try {
     return document_of(Member(json, ""));

@@ -31,6 +31,8 @@ Outcome relative_check_of(Index negative) {
   Certificate& certificate = outcome.check->certificate;
   certificate.level = Level::kStatistical;
   certificate.method = "relative";
+  certificate.relative_bound = 1e-3;
+  certificate.failure_probability = 1e-6;
   certificate.resolution.reset();
   certificate.error_bound.reset();
   certificate.runs.clear();
@@ -44,8 +46,13 @@ Outcome count_of(Index least, Index most) {
   count.shift = 2.5;
   count.meaning = "eigenvalues below the shift";
   count.below_range = {least, most};
-  count.certificate.level = Level::kProved;
-  if (least == most) count.below = least;
+  count.certificate = relative_check_of(0).check->certificate;
+  count.method = count.certificate.method;
+  if (least == most) {
+    count.below = least;
+    count.level = count.certificate.level;
+    count.failure_probability = count.certificate.failure_probability;
+  }
   return outcome;
 }
 
@@ -111,6 +118,47 @@ TEST(Claims, AClaimMayContradictItself) {
   Outcome count_beside_its_range = count_of(3, 3);
   count_beside_its_range.count->counts[0].below = 4;
   EXPECT_EQ(between(count_beside_its_range, count_of(3, 3)), Agreement::kContradicted);
+}
+
+TEST(Claims, BoundsAreThoseOfTheFactorizations) {
+  const Outcome truth = check_of(0, 0);
+  const auto altered = [&](auto change) {
+    Outcome claimed = truth;
+    change(claimed.check->certificate);
+    return between(claimed, truth);
+  };
+  EXPECT_EQ(altered([](Certificate& c) { c.smallest_eigenvalue_above = 8e-13; }), Agreement::kAgreed);
+  EXPECT_EQ(altered([](Certificate& c) { c.smallest_eigenvalue_above = 2e-12; }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Certificate& c) { c.smallest_eigenvalue_of_k_above = 1; }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Certificate& c) { c.error_bound = 1e-14; }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Certificate& c) { c.resolution = 2e-12; }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Certificate& c) { c.method = "relative"; }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Certificate& c) { c.runs.clear(); }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Certificate& c) { c.runs.push_back({1e-9, 3, 1e-13}); }), Agreement::kAgreed);
+}
+
+TEST(Claims, TheBoundForKItselfFollowsFromTheScaling) {
+  Outcome claimed = check_of(0, 0), found = claimed;
+  claimed.check->certificate.smallest_eigenvalue_above = 9e-13;
+  claimed.check->certificate.smallest_eigenvalue_of_k_above = 9e-9;
+  found.check->certificate.smallest_eigenvalue_above = 8e-13;
+  found.check->certificate.smallest_eigenvalue_of_k_above = 8e-9;
+  EXPECT_EQ(between(claimed, found), Agreement::kAgreed);
+  claimed.check->certificate.smallest_eigenvalue_of_k_above = 9.1e-9;
+  EXPECT_EQ(between(claimed, found), Agreement::kContradicted);
+}
+
+TEST(Claims, FactorizationsAtOneOffsetShouldGiveOneNumber) {
+  Outcome claimed = check_of(0, 1), found = claimed;
+  claimed.check->certificate.runs.push_back({1e-9, 3, 1e-13});
+  found.check->certificate.runs.push_back({1e-9, 2, 1e-13});
+  EXPECT_EQ(between(claimed, found), Agreement::kNotRepeated);
+}
+
+TEST(Claims, RelativeClaimsNeedABoundBelowOne) {
+  Outcome claimed = relative_check_of(2);
+  claimed.check->certificate.relative_bound = 1;
+  EXPECT_EQ(between(claimed, check_of(2, 0)), Agreement::kContradicted);
 }
 
 TEST(Claims, NothingClaimedOrNothingFoundIsNotRepeated) {
