@@ -1,5 +1,9 @@
 #include "extended/kernels.hpp"
 
+#include <string_view>
+
+#include "dense/kernels.hpp"
+
 namespace stanchion {
 namespace extended_isa_generic {
 extern const ScalarKernels<double> double_table;
@@ -25,11 +29,13 @@ bool has_avx512() {
          __builtin_cpu_supports("avx512vl") && __builtin_cpu_supports("avx512bw");
 }
 
+/// The set that goes with the dense kernels in use: plain ones where those are.
 template <class Scalar>
 const ScalarKernels<Scalar>& pick(const ScalarKernels<Scalar>& plain, const ScalarKernels<Scalar>& avx2,
                                   const ScalarKernels<Scalar>& avx512) {
-  if (has_avx512()) return avx512;
-  return has_avx2() ? avx2 : plain;
+  const std::string_view isa = kernels().isa;
+  if (isa == "AVX-512" && has_avx512()) return avx512;
+  return isa != reference_kernels().isa && has_avx2() ? avx2 : plain;
 }
 
 template <class Scalar>
