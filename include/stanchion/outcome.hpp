@@ -89,6 +89,7 @@ struct ShiftCount {
   std::optional<double> failure_probability;
   std::pair<Index, Index> below_range{0, 0};                 ///< least, most
   std::optional<std::pair<double, double>> holds_outside;    ///< no statement for true shifts inside
+  std::optional<double> no_eigenvalue_within;                ///< certified distance from the shift, where known
   Certificate certificate;
 };
 

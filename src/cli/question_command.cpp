@@ -136,9 +136,8 @@ void QuestionCommand::declare(Arguments& arguments) {
   declare_output_options(arguments, output_, question_);
 }
 
-Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log) const {
-  CancellationToken token;
-  const InterruptGuard guard(token);
+Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log,
+                                     const CancellationToken& token) const {
   // A log on the same terminal would be torn apart by the line.
   ProgressLine line(standard_error_is_terminal() && !output_.quiet && !log.to_standard_error());
   RunContext context;
@@ -149,6 +148,8 @@ Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log)
 }
 
 Result<int> QuestionCommand::run(const Call& call) {
+  CancellationToken token;
+  const InterruptGuard guard(token);  // before anything is opened: a request to stop leaves nothing behind
   auto request = build_request(request_, question_);
   if (!request.ok()) return request.status();
   request->want_witness = output_.witness.has_value();
@@ -160,7 +161,7 @@ Result<int> QuestionCommand::run(const Call& call) {
   if (!log.ok()) return log.status();
 
   log->line(fmt::format("{} {}: {}", program_name(), program_version(), fmt::join(call.arguments, " ")));
-  auto outcome = ask(*request, *log);
+  auto outcome = ask(*request, *log, token);
 
   if (!outcome.ok()) {
     log->line(outcome.status().to_string());

@@ -2,6 +2,7 @@
 // to the places asked, and the exit code.
 #pragma once
 
+#include "base/cancellation.hpp"
 #include "cli/command.hpp"
 #include "cli/request_options.hpp"
 #include "engine/pipeline.hpp"
@@ -24,7 +25,7 @@ class QuestionCommand : public Command {
   Result<int> run(const Call& call) override;
 
  private:
-  Result<Outcome> ask(const Request& request, const class LogFile& log) const;
+  Result<Outcome> ask(const Request& request, const class LogFile& log, const CancellationToken& token) const;
 
   Question question_;
   Engine engine_;

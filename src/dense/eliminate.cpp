@@ -48,12 +48,11 @@ class FrontEliminator {
       Panel panel{done, std::min(layout_.block_end(block), limit), done};
       const Index panel_end = panel.end;
       if (!take_pivots(panel)) return result_;
-      ++panels_;
       update_beyond(panel, panel_end);
       done = panel.next;
       limit = set_aside_failed(done, panel_end, limit);
     }
-    result_.additions = panels_ + most_tiles_;
+    result_.additions = additions_beyond_ + most_in_panel_;
     result_.image_additions += std::min(front_.candidates, kTileWidth);  // in the row's own tile
     result_.eliminated = done;
     if (done < front_.candidates) {
@@ -79,12 +78,12 @@ class FrontEliminator {
   /// Takes tiles until every column of the panel is a pivot or has failed. False: stopped or not finite.
   bool take_pivots(Panel& panel) {
     const Index full_end = panel.end;
-    Index tiles = 0;
+    Index additions = 0;
     while (panel.next < panel.end) {
       const Index width = std::min(kTileWidth, panel.end - panel.next);
       const Index accepted = take_tile(panel, width, full_end);
       if (result_.stopped || result_.not_finite) return false;
-      ++tiles;
+      additions += additions_of_a_product(accepted);
       const Index failed = width - accepted;
       panel.next += accepted;
       // Failed columns change places with the last ones of the panel that have not been tried.
@@ -94,7 +93,7 @@ class FrontEliminator {
       }
       panel.end -= failed;
     }
-    most_tiles_ = std::max(most_tiles_, tiles);
+    most_in_panel_ = std::max(most_in_panel_, additions);
     return true;
   }
 
@@ -323,6 +322,7 @@ class FrontEliminator {
     const Index count = panel.next - panel.begin;
     if (count == 0 || panel_end >= layout_.order) return;
     result_.longest_sum = std::max(result_.longest_sum, count);
+    additions_beyond_ += additions_of_a_product(count);
     update_trailing(front_.matrix,
                     {front_.matrix.column(panel_end, panel.begin), leading(panel), scaled(panel, panel_end, panel.begin),
                      leading_scaled(panel), panel_end, count},
@@ -345,7 +345,8 @@ class FrontEliminator {
   EliminationScratch& scratch_;
   ThreadPool* team_;
   EliminationResult result_;
-  Index panels_ = 0, most_tiles_ = 0;
+  Index additions_beyond_ = 0;  ///< to entries beyond the panels, over all panels
+  Index most_in_panel_ = 0;     ///< to entries of one panel, by its own tiles
 };
 
 }  // namespace

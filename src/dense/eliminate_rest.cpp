@@ -2,6 +2,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "dense/blas.hpp"
 #include "dense/eliminate.hpp"
 #include "dense/trailing_update.hpp"
 
@@ -209,7 +210,7 @@ class SearchEliminator {
                          leading_scaled(), rest, end - begin},
                         rest, order(), team_);
         result_.longest_sum = std::max(result_.longest_sum, end - begin);
-        ++searches_;
+        searches_ += additions_of_a_product(end - begin);
         begin = end;
       }
     }

@@ -70,7 +70,7 @@ struct Kernels {
 };
 
 /// Longest path of additions through a signed column sum of divide_by_pivots.
-constexpr Index signed_sum_depth(Index rows) { return rows / 8 + 11; }
+constexpr Index signed_sum_depth(Index rows) { return rows / 2 + 11; }
 
 /// Additions to one row by add_growth_and_image.
 constexpr Index image_additions(Index columns) { return columns / 4 + columns % 4; }

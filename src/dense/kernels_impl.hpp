@@ -10,10 +10,17 @@ namespace {
 inline double magnitude(double x) { return __builtin_fabs(x); }
 inline bool finite(double x) { return __builtin_isfinite(x); }
 
-// Eight lanes whatever the instruction set: sums keep one order, and the compiler may not reorder them itself.
-typedef double Lanes __attribute__((vector_size(64)));
-typedef long long LaneBits __attribute__((vector_size(64)));
-constexpr Index kLanes = 8;
+// As many lanes as a register holds: sums keep one order in each set, and the compiler may not reorder them itself.
+#if defined(__AVX512F__)
+#define STANCHION_LANE_BYTES 64
+#elif defined(__AVX2__)
+#define STANCHION_LANE_BYTES 32
+#else
+#define STANCHION_LANE_BYTES 16
+#endif
+typedef double Lanes __attribute__((vector_size(STANCHION_LANE_BYTES)));
+typedef long long LaneBits __attribute__((vector_size(STANCHION_LANE_BYTES)));
+constexpr Index kLanes = STANCHION_LANE_BYTES / 8;
 
 inline Lanes load(const double* p) {
   Lanes v;
@@ -25,7 +32,11 @@ inline Lanes magnitude(Lanes v) {
   const LaneBits mask = LaneBits{} + 0x7fffffffffffffffLL;
   return (Lanes)((LaneBits)v & mask);
 }
-inline double sum_of(Lanes v) { return ((v[0] + v[4]) + (v[2] + v[6])) + ((v[1] + v[5]) + (v[3] + v[7])); }
+inline double sum_of(Lanes v) {
+  double sum = v[0];
+  for (Index lane = 1; lane < kLanes; ++lane) sum += v[lane];
+  return sum;
+}
 
 /// Largest |x_i|; infinite when one is not a number.
 inline double abs_max(const double* x, Index count) {

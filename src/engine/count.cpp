@@ -73,6 +73,7 @@ class Counter {
     if (request_.pencil == Pencil::kGeometric) {
       auto definite = pencil_->certify(0, true, 0, pool_, outcome_);
       if (!definite.ok()) return definite.status();
+      base_ = definite->certificate;
       stiffness_bound_ = definite->certificate.smallest_eigenvalue_above.value_or(0);
       stiffness_definite_ = verdict_of(definite->inertia, definite->certificate.level) == Verdict::kPositiveDefinite;
       if (!stiffness_definite_) warn_not_definite(*definite);
@@ -128,6 +129,7 @@ class Counter {
            "K is singular (at the resolution) on the dofs without mass: K and M may have common null vectors, and "
            "then no count of eigenvalues exists; the inertia of K - s M is reported instead");
     }
+    base_ = found->certificate;
     negative_on_massless_ = found->inertia.negative;
     return {};
   }
@@ -136,6 +138,7 @@ class Counter {
   Status certify_mass() {
     auto found = pencil_->certify_second(pool_, outcome_);
     if (!found.ok()) return found.status();
+    base_ = found->certificate;
     mass_semidefinite_ = verdict_of(found->inertia, found->certificate.level) == Verdict::kPositiveDefinite;
     if (mass_semidefinite_) return {};
     warn("mass-not-definite",
@@ -184,13 +187,25 @@ class Counter {
     count.below_range = {least, least + inertia.zero};
     if (inertia.zero == 0) {
       count.below = least;
-      count.level = found->certificate.level;
-      count.failure_probability = found->certificate.failure_probability;
+      rest_on(count, found->certificate);
+      if (found->exclusion_radius > 0) count.no_eigenvalue_within = found->exclusion_radius;
     } else {
       count.holds_outside = band(shift, found->certificate);
       warn_at_eigenvalue(count, inertia.zero);
     }
     return count;
+  }
+
+  /// A count stands on its own certificate and on those of K or M that give it its meaning: the weakest counts, and the
+  /// failure probabilities add up.
+  void rest_on(ShiftCount& count, const Certificate& own) const {
+    count.level = own.level;
+    double failure = own.level == Level::kStatistical ? own.failure_probability.value_or(0) : 0;
+    if (base_.level == Level::kStatistical) {
+      count.level = Level::kStatistical;
+      failure += base_.failure_probability.value_or(0);
+    }
+    if (count.level == Level::kStatistical) count.failure_probability = failure;
   }
 
   /// The interval around `shift` that must hold the eigenvalues between the two counts: A_s moves by at least mu a
@@ -277,6 +292,7 @@ class Counter {
   bool stiffness_definite_ = false, mass_semidefinite_ = false, mass_diagonal_ = false;
   double stiffness_bound_ = 0;  ///< S K S is at least this, when certified definite
   Index negative_on_massless_ = 0;
+  Certificate base_;  ///< of what gives the counts their meaning: K definite, M definite, K on the massless dofs
 };
 
 }  // namespace

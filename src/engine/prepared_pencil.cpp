@@ -164,10 +164,18 @@ ShiftedMatrix PreparedPencil::combination(double factor) const {
   return matrix;
 }
 
+ShiftedMatrix PreparedPencil::second_alone() const {
+  ShiftedMatrix matrix = combination(1);
+  if (has_second_) std::fill(matrix.coefficients.begin(), matrix.coefficients.end() - 1, 0.0);
+  return matrix;
+}
+
 Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                              Outcome& outcome) {
   CertifyOptions certify_options{options, extended_ ? nullptr : risk_.get(), seed_, bytes_for_factor()};
   certify_options.offsets.extended = extended_;
+  const ShiftedMatrix second = second_alone();
+  if (has_second_) certify_options.second = &second;
   const double spent_before = risk_->spent();
   auto certified = certify_inertia(analysis_, matrix, certify_options, pool);
   if (!certified.ok()) return certified.status();
@@ -195,8 +203,7 @@ Result<CertifiedInertia> PreparedPencil::certify(double factor, bool definite_fi
 }
 
 Result<CertifiedInertia> PreparedPencil::certify_second(ThreadPool& pool, Outcome& outcome) {
-  ShiftedMatrix matrix = combination(1);
-  std::fill(matrix.coefficients.begin(), matrix.coefficients.end() - 1, 0.0);
+  ShiftedMatrix matrix = second_alone();
   auto scale = power_of_two_scaling(family_, matrix.coefficients);
   if (!scale.ok()) return scale.status();
   matrix.scale = &*scale;

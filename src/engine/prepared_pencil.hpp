@@ -49,6 +49,7 @@ class PreparedPencil {
 
  private:
   ShiftedMatrix combination(double factor) const;
+  ShiftedMatrix second_alone() const;
   Result<CertifiedInertia> run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                Outcome& outcome);
   Offset bytes_for_factor() const;

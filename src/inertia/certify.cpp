@@ -14,9 +14,14 @@ void add_cost(CertifiedInertia& total, const CertifiedInertia& more) {
   total.peak_bytes = std::max(total.peak_bytes, more.peak_bytes);
 }
 
+/// Memory of the numeric phase with L kept in single precision.
+Offset single_bytes(const StructureForecast& forecast) {
+  return forecast.peak_bytes_solve - forecast.stored_factor_entries * Offset{sizeof(double) - sizeof(float)};
+}
+
 bool relative_allowed(const Analysis& analysis, const CertifyOptions& options) {
   return options.risk != nullptr && !options.offsets.resolution && options.offsets.data_error == 0 &&
-         analysis.tree.rows > 0 && analysis.forecast.peak_bytes_solve <= options.most_factor_bytes;
+         analysis.tree.rows > 0 && single_bytes(analysis.forecast) <= options.most_factor_bytes;
 }
 
 /// One factorization with the factor kept, and the test. Level none when it does not pass.
@@ -31,6 +36,8 @@ Result<CertifiedInertia> by_relative_test(const Analysis& analysis, const Shifte
   FactorOptions factor_options = options.offsets.factor;
   factor_options.definite = false;
   factor_options.keep_factor = true;
+  factor_options.store_single = analysis.forecast.peak_bytes_solve > options.most_factor_bytes;
+  if (factor_options.store_single) found.certificate.precision = "single";
   auto factorization = factorize(analysis, unshifted, factor_options, pool);
   if (!factorization.ok()) return factorization.status();
   if (Status sound = check_fault(analysis, *factorization); !sound.ok()) return sound;
@@ -43,7 +50,7 @@ Result<CertifiedInertia> by_relative_test(const Analysis& analysis, const Shifte
     found.unresolved_because = "the factorization broke down: entries overflow or no usable pivot is left";
     return found;
   }
-  auto test = certify_relative(analysis, unshifted, *factorization, *options.risk, options.seed, pool);
+  auto test = certify_relative(analysis, unshifted, *factorization, *options.risk, options.seed, pool, options.second);
   if (!test.ok()) return test.status();
   found.certify_seconds = test->seconds;
   found.certificate.failure_probability = test->failure_probability;
@@ -53,6 +60,7 @@ Result<CertifiedInertia> by_relative_test(const Analysis& analysis, const Shifte
     return found;
   }
   found.certificate.relative_bound = test->relative_bound;
+  found.exclusion_radius = test->exclusion_radius;
   found.certificate.level = Level::kStatistical;
   found.inertia = {static_cast<Index>(test->negative), 0, static_cast<Index>(test->positive), 0};
   return found;

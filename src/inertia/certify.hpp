@@ -11,11 +11,12 @@ struct CertifyOptions {
   RiskBudget* risk = nullptr;       ///< of the document; null: no statistical statement is allowed
   std::uint64_t seed = 1;
   Offset most_factor_bytes = 0;     ///< memory that keeping a factor may take
+  const ShiftedMatrix* second = nullptr;  ///< of the pencil: asks for the radius free of eigenvalues, too
 };
 
 /// Definite expected: one factorization with an offset, without pivoting, is the cheapest proof. Otherwise the two
 /// offsets where their second factorization is cheap, else the relative test (one factorization, kept) where memory and
-/// risk allow. What leaves zero directions escalates to the other; the offsets have the last word, at a resolution.
+/// risk allow; L is stored in single precision where only that fits. What leaves zero directions escalates to the other; the offsets have the last word, at a resolution.
 /// Errors: those of the methods.
 Result<CertifiedInertia> certify_inertia(const Analysis& analysis, const ShiftedMatrix& matrix,
                                          const CertifyOptions& options, ThreadPool& pool);

@@ -18,10 +18,12 @@ namespace {
 constexpr Index kV = kBlockVectors;
 constexpr double kUnit = 0x1p-53;
 
+constexpr int kMostPowerSteps = 4;
+
 using Norms = std::array<double, kV>;
 
-/// The square root T of one pivot and the signs J, D ~ T J T^T. For a 2x2 pivot T^-1 = diag(1/sqrt|lambda|) Q^T is the
-/// matrix that is stored and used; T is its exact inverse.
+/// The square root T of one pivot and the signs J, D ~ T J T^T. For a 2x2 pivot T^-1 = diag(1/sqrt|lambda|)
+/// Q^T is the matrix that is stored and used; T is its exact inverse.
 struct PivotRoot {
   bool pair = false;
   double root = 0, inverse = 0;  ///< 1x1
@@ -79,9 +81,14 @@ Norms column_norms(const std::vector<double>& block) {
 class RelativeTest {
  public:
   RelativeTest(const Analysis& analysis, const ShiftedMatrix& matrix, const Factorization& factorization,
-               ThreadPool& pool)
-      : matrix_(matrix), factorization_(factorization), factor_(*factorization.factor), pool_(pool),
-        solver_(analysis, factor_, pool), rows_(static_cast<std::size_t>(factor_.rows)) {}
+               const ShiftedMatrix* second, ThreadPool& pool)
+      : matrix_(matrix),
+        second_(second),
+        factorization_(factorization),
+        factor_(*factorization.factor),
+        pool_(pool),
+        solver_(analysis, factor_, pool),
+        rows_(static_cast<std::size_t>(factor_.rows)) {}
 
   RelativeResult run(double failure, std::uint64_t key) {
     RelativeResult result;
@@ -89,18 +96,20 @@ class RelativeTest {
     result.relative_bound = INFINITY;
     count_signs(result);
     if (zero_pivot_) return result;
-    const double g = small_ball(failure / 2, kV);  // two events: the norm of M^-1 and the norm of F
+    const double events = second_ != nullptr ? 3 : 2;  // the norms of M^-1 and of F, and of M^-1 B M^-T
+    const double g = small_ball(failure / events, kV);
     draw(key);
-    std::vector<double> y = transposed_solve();
-    const Norms y_norm = column_norms(y);
-    std::vector<double> z(y.size());
-    extended_times(matrix_, y.data(), z.data(), pool_);
-    const Norms b_norm = column_norms(z);
-    solve(z);
-    const Norms z_norm = column_norms(z);
-    combine(z);
-    const Norms v_norm = column_norms(z);
-    judge(result, g, y_norm, b_norm, z_norm, v_norm);
+    data_ = absolute_norm(matrix_);
+    gamma_ = 1.01 * kUnit * (solver_.longest_path() + 16);
+    m_norm_ = std::sqrt(root_growth());  // || |M| ||_2
+    std::vector<double> v = gaussian_;
+    Norms noise{};
+    for (int step = 1; step <= kMostPowerSteps; ++step) {
+      if (!apply_error(v, g, noise, step == 1 ? &result : nullptr)) return result;
+      judge(result, g, step, column_norms(v), noise);
+      // More steps pay only while what was measured, not what rounding may hide, is in the way.
+      if (result.certified || !(result.transposed_part + result.residual_part < 0.25)) return result;
+    }
     return result;
   }
 
@@ -109,7 +118,8 @@ class RelativeTest {
     for (const FactorFront& front : factor_.fronts) {
       for (Index k = 0; k < front.pivots; ++k) {
         zero_pivot_ = zero_pivot_ || front.kind[k] == PivotKind::kZero;
-        if (front.kind[k] == PivotKind::kTwoFirst) pair_spread_ = std::max(pair_spread_, column_ratio(front, k));
+        if (front.kind[k] == PivotKind::kTwoFirst)
+          pair_spread_ = std::max(pair_spread_, column_ratio(front, k));
       }
     }
     if (zero_pivot_) return;
@@ -121,15 +131,18 @@ class RelativeTest {
   /// Larger over smaller of the absolute sums of columns k and k + 1 of L.
   static double column_ratio(const FactorFront& front, Index k) {
     double sums[2] = {0, 0};
-    for (int c = 0; c < 2; ++c) {
-      const double* column = front.lower.data() + Offset{k + c} * front.order;
-      for (Index i = k; i < front.order; ++i) sums[c] += std::fabs(column[i]);
-    }
+    front.with_lower([&](const auto* lower) {
+      for (int c = 0; c < 2; ++c) {
+        const auto* column = lower + Offset{k + c} * front.order;
+        for (Index i = k; i < front.order; ++i) sums[c] += std::fabs(column[i]);
+      }
+    });
     return std::max(sums[0] / sums[1], sums[1] / sums[0]);
   }
 
-  /// Bound on || |M| ||_2^2 <= || |L||T||T|^T|L|^T ||_inf. The row bounds of the factorization hold at least 42 u times
-  /// the row sums of |L||D||L^T|; for 1x1 pivots |T||T|^T = |D|, for 2x2 it is at most 1.7 |b| in every entry.
+  /// Bound on || |M| ||_2^2 <= || |L||T||T|^T|L|^T ||_inf. The row bounds of the factorization hold at least
+  /// 42 u times the row sums of |L||D||L^T|; for 1x1 pivots |T||T|^T = |D|, for 2x2 it is at most 1.7 |b| in
+  /// every entry.
   double root_growth() const {
     const double growth = factorization_.error_bound / (42 * kUnit);
     return pair_spread_ > 0 ? 1.7 * (1 + pair_spread_) * growth : growth;
@@ -149,9 +162,65 @@ class RelativeTest {
 
   double* row(std::vector<double>& block, Index position) { return block.data() + Offset{position} * kV; }
 
+  /// v := F v. Adds the bounds 2 ||h|| + beta ||rho|| + rounding of v to `noise`. The first call (v = w,
+  /// `first` not null) also settles beta, and the exclusion radius where one is asked. False when nothing
+  /// follows.
+  bool apply_error(std::vector<double>& v, double g, Norms& noise, RelativeResult* first) {
+    const std::vector<double> input = v;
+    std::vector<double> y = transposed_solve(input);
+    const Norms y_norm = column_norms(y);
+    extended_times(matrix_, y.data(), v.data(), pool_);
+    const Norms b_norm = column_norms(v);
+    solve(v);
+    const Norms z_norm = column_norms(v);
+    if (first != nullptr) {
+      const double y_most = *std::max_element(y_norm.begin(), y_norm.end());
+      h_most_ = gamma_ * m_norm_ * y_most;
+      if (!(h_most_ < g)) return false;
+      beta_ = y_most / (g - h_most_);
+    }
+    combine(v, input);
+    const Norms v_norm = column_norms(v);
+    // Every term of a row of A_s y: its coefficient, product, addition; then the joining of the ranges.
+    const double product_error = 8 * static_cast<double>(data_.longest_row + 8) * kUnit * kUnit * data_.norm;
+    double transposed = 0, residual = 0;
+    for (std::size_t i = 0; i < kV; ++i) {
+      const double h = gamma_ * m_norm_ * y_norm[i];
+      const double rho =
+          1.01 * kUnit * b_norm[i] + product_error * y_norm[i] + gamma_ * m_norm_ * z_norm[i] + 0x1p-500;
+      noise[i] += 2 * h + beta_ * rho + 1.01 * kUnit * (z_norm[i] + v_norm[i]);
+      transposed = std::max(transposed, h);
+      residual = std::max(residual, beta_ * rho);
+    }
+    if (first != nullptr) {
+      first->transposed_part = transposed / g;
+      first->residual_part = residual / g;
+      if (second_ != nullptr) second_norm_ = bound_second(y, y_norm, g);
+    }
+    return true;
+  }
+
+  /// b >= ||M^-1 B M^-T||, B the second matrix, from the y at hand: one product and one solve more.
+  double bound_second(const std::vector<double>& y, const Norms& y_norm, double g) {
+    std::vector<double> u(y.size());
+    extended_times(*second_, y.data(), u.data(), pool_);
+    const Norms b_norm = column_norms(u);
+    solve(u);
+    const Norms u_norm = column_norms(u);
+    const AbsoluteNorm size = absolute_norm(*second_);
+    double most = 0;
+    for (std::size_t i = 0; i < kV; ++i) {
+      const double rho =
+          1.01 * kUnit * b_norm[i] + gamma_ * m_norm_ * u_norm[i] +
+          8 * static_cast<double>(size.longest_row + 8) * kUnit * kUnit * size.norm * y_norm[i] + 0x1p-500;
+      most = std::max(most, u_norm[i] + beta_ * rho);
+    }
+    return most / (g - h_most_) * 1.001;
+  }
+
   /// y = M^-T w: T^-T, then L^-T.
-  std::vector<double> transposed_solve() {
-    std::vector<double> y = gaussian_;
+  std::vector<double> transposed_solve(const std::vector<double>& w) {
+    std::vector<double> y = w;
     each_pivot(factor_, [&](const PivotRoot& root, Index first, Index second) {
       double* f = row(y, first);
       if (!root.pair) {
@@ -187,46 +256,39 @@ class RelativeTest {
     });
   }
 
-  /// v = z - J w.
-  void combine(std::vector<double>& z) {
+  /// z := z - J w.
+  void combine(std::vector<double>& z, const std::vector<double>& w) {
+    const auto subtract = [&](Index position, double sign) {
+      double* to = row(z, position);
+      const double* from = w.data() + Offset{position} * kV;
+      for (Index v = 0; v < kV; ++v) to[v] -= sign * from[v];
+    };
     each_pivot(factor_, [&](const PivotRoot& root, Index first, Index second) {
-      for (Index v = 0; v < kV; ++v) row(z, first)[v] -= root.sign[0] * row(gaussian_, first)[v];
-      if (second < 0) return;
-      for (Index v = 0; v < kV; ++v) row(z, second)[v] -= root.sign[1] * row(gaussian_, second)[v];
+      subtract(first, root.sign[0]);
+      if (second >= 0) subtract(second, root.sign[1]);
     });
   }
 
-  void judge(RelativeResult& result, double g, const Norms& y, const Norms& b, const Norms& z, const Norms& v) {
-    const double gamma = 1.01 * kUnit * (solver_.longest_path() + 16);
-    const double m_norm = std::sqrt(root_growth());  // || |M| ||_2
-    const AbsoluteNorm data = absolute_norm(matrix_);
-    // Every term of a row of A_s y: its coefficient, product, addition; then the joining of the ranges.
-    const double product_error = 8 * static_cast<double>(data.longest_row + 8) * kUnit * kUnit * data.norm;
-    double h_most = 0, y_most = 0;
+  /// After `steps` applications ||v|| + noise >= g ||F||^steps for some vector, as long as ||F|| <= 1; and if
+  /// ||F|| were 1 or more, it would be at least g.
+  void judge(RelativeResult& result, double g, int steps, const Norms& v, const Norms& noise) {
+    double most = 0;
     for (std::size_t i = 0; i < kV; ++i) {
-      h_most = std::max(h_most, gamma * m_norm * y[i]);
-      y_most = std::max(y_most, y[i]);
+      const double total = (v[i] + noise[i]) / g;
+      if (!(total <= most)) most = total;
     }
-    if (!(h_most < g)) return;
-    const double beta = y_most / (g - h_most);
-    double bound = 0;
-    for (std::size_t i = 0; i < kV; ++i) {
-      const double h = gamma * m_norm * y[i];
-      const double rho = 1.01 * kUnit * b[i] + product_error * y[i] + gamma * m_norm * z[i] + 0x1p-500;
-      const double measured = v[i] + 1.01 * kUnit * (z[i] + v[i]);
-      const double total = (measured + h + beta * rho) / (g - h);
-      if (!(total <= bound)) {
-        bound = total;
-        result.measured_part = measured / (g - h);
-        result.transposed_part = h / (g - h);
-        result.residual_part = beta * rho / (g - h);
-      }
-    }
-    result.relative_bound = std::isnan(bound) ? INFINITY : bound * 1.001;
-    result.certified = result.relative_bound < 1;
+    result.measured_part = *std::max_element(v.begin(), v.end()) / g;
+    result.power_steps = steps;
+    most *= 1.001;
+    result.certified = most < 1;
+    result.relative_bound =
+        std::isnan(most) ? INFINITY : (result.certified ? std::pow(most, 1.0 / steps) * (1 + 1e-12) : most);
+    if (result.certified && second_norm_ > 0)
+      result.exclusion_radius = (1 - result.relative_bound) / second_norm_ * 0.999;
   }
 
   const ShiftedMatrix& matrix_;
+  const ShiftedMatrix* second_;
   const Factorization& factorization_;
   const Factor& factor_;
   ThreadPool& pool_;
@@ -234,19 +296,21 @@ class RelativeTest {
   std::size_t rows_;
   std::vector<double> gaussian_;
   bool zero_pivot_ = false;
+  AbsoluteNorm data_;
+  double gamma_ = 0, m_norm_ = 0, beta_ = 0, h_most_ = 0, second_norm_ = 0;
   double pair_spread_ = 0;  ///< largest column_ratio of a 2x2 pivot; 0 when there is none
 };
 
 }  // namespace
 
 Result<RelativeResult> certify_relative(const Analysis& analysis, const ShiftedMatrix& matrix,
-                                        const Factorization& factorization, RiskBudget& risk, std::uint64_t seed,
-                                        ThreadPool& pool) {
+                                        const Factorization& factorization, RiskBudget& risk,
+                                        std::uint64_t seed, ThreadPool& pool, const ShiftedMatrix* second) {
   const Stopwatch watch;
   const double failure = risk.charge();
   const std::uint64_t key = CounterRandom::combine(seed, static_cast<std::uint64_t>(risk.attempts()));
   try {
-    RelativeResult result = RelativeTest(analysis, matrix, factorization, pool).run(failure, key);
+    RelativeResult result = RelativeTest(analysis, matrix, factorization, second, pool).run(failure, key);
     result.seconds = watch.seconds();
     return result;
   } catch (const std::bad_alloc&) {

@@ -25,6 +25,7 @@ struct CertifiedInertia {
   std::string unresolved_because;  ///< empty when certificate.level is proved
   Index factorizations = 0;
   Offset delayed_pivots = 0, two_by_two_pivots = 0, peak_bytes = 0;
+  double exclusion_radius = 0;  ///< relative test with a second matrix B: A + t B is nonsingular for |t| below; or 0
   double seconds = 0;          ///< of the factorizations
   double certify_seconds = 0;  ///< beyond them
 };

@@ -18,13 +18,23 @@ struct DataColumns {
   Index members;
 };
 
-struct BlockKernels {
+/// The two loops over a panel of L, for L in either precision; sums are in double.
+template <class Scalar>
+struct PanelKernels {
   /// y_i += sum_(k < columns) l_ik x_k for `rows` rows; columns <= 64. The sum is formed apart and added once.
-  void (*panel_times_block)(const double* lower, Index leading, Index rows, Index columns, const double* x, double* y);
+  void (*times_block)(const Scalar* lower, Index leading, Index rows, Index columns, const double* x, double* y);
 
   /// out_k += sum_(i < rows) l_ik x_i for `columns` columns; rows <= 512. Each sum is formed apart, added once.
-  void (*panel_transposed_times_block)(const double* lower, Index leading, Index rows, Index columns, const double* x,
-                                       double* out);
+  void (*transposed_times_block)(const Scalar* lower, Index leading, Index rows, Index columns, const double* x,
+                                 double* out);
+};
+
+struct BlockKernels {
+  PanelKernels<double> of_double;
+  PanelKernels<float> of_single;
+
+  const PanelKernels<double>& panel(const double*) const { return of_double; }
+  const PanelKernels<float>& panel(const float*) const { return of_single; }
 
   /// (high + low) += A y over columns [begin, end) of the lower triangle, both triangles, in double-double: every
   /// coefficient sum_t c_t v_t, every product and every addition carries a relative error of at most 8 2^-106.

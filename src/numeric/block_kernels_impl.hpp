@@ -36,8 +36,9 @@ inline Lanes add_product(Lanes c, Lanes a, double b) {
 constexpr Index kPanelRows = 512;
 
 /// sum_i = (first group ? 0 : sum_i) + four columns times their rows of x.
-void add_four_columns(const double* lower, Index leading, Index rows, const double* x, Lanes* sum) {
-  const double *l0 = lower, *l1 = l0 + leading, *l2 = l1 + leading, *l3 = l2 + leading;
+template <class Scalar>
+void add_four_columns(const Scalar* lower, Index leading, Index rows, const double* x, Lanes* sum) {
+  const Scalar *l0 = lower, *l1 = l0 + leading, *l2 = l1 + leading, *l3 = l2 + leading;
   const Lanes x0 = load(x), x1 = load(x + 8), x2 = load(x + 16), x3 = load(x + 24);
   for (Index i = 0; i < rows; ++i) {
     const Lanes pair = add_product(x0 * l0[i], x1, l1[i]);
@@ -46,7 +47,8 @@ void add_four_columns(const double* lower, Index leading, Index rows, const doub
   }
 }
 
-void panel_times_block(const double* lower, Index leading, Index rows, Index columns, const double* x, double* y) {
+template <class Scalar>
+void panel_times_block(const Scalar* lower, Index leading, Index rows, Index columns, const double* x, double* y) {
   Lanes sum[kPanelRows];
   for (Index begin = 0; begin < rows; begin += kPanelRows) {
     const Index count = rows - begin < kPanelRows ? rows - begin : kPanelRows;
@@ -56,7 +58,7 @@ void panel_times_block(const double* lower, Index leading, Index rows, Index col
       add_four_columns(lower + begin + static_cast<long>(k) * leading, leading, count, x + 8 * k, sum);
     }
     for (; k < columns; ++k) {
-      const double* l = lower + begin + static_cast<long>(k) * leading;
+      const Scalar* l = lower + begin + static_cast<long>(k) * leading;
       const Lanes v = load(x + 8 * k);
       for (Index i = 0; i < count; ++i) sum[i] = add_product(sum[i], v, l[i]);
     }
@@ -65,12 +67,13 @@ void panel_times_block(const double* lower, Index leading, Index rows, Index col
   }
 }
 
-void panel_transposed_times_block(const double* lower, Index leading, Index rows, Index columns, const double* x,
+template <class Scalar>
+void panel_transposed_times_block(const Scalar* lower, Index leading, Index rows, Index columns, const double* x,
                                   double* out) {
   Index k = 0;
   for (; k + 4 <= columns; k += 4) {
-    const double* l0 = lower + static_cast<long>(k) * leading;
-    const double *l1 = l0 + leading, *l2 = l1 + leading, *l3 = l2 + leading;
+    const Scalar* l0 = lower + static_cast<long>(k) * leading;
+    const Scalar *l1 = l0 + leading, *l2 = l1 + leading, *l3 = l2 + leading;
     Lanes s0{}, s1{}, s2{}, s3{};
     for (Index i = 0; i < rows; ++i) {
       const Lanes v = load(x + 8 * static_cast<long>(i));
@@ -86,7 +89,7 @@ void panel_transposed_times_block(const double* lower, Index leading, Index rows
     store(o + 24, load(o + 24) + s3);
   }
   for (; k < columns; ++k) {
-    const double* l = lower + static_cast<long>(k) * leading;
+    const Scalar* l = lower + static_cast<long>(k) * leading;
     Lanes s{};
     for (Index i = 0; i < rows; ++i) s = add_product(s, load(x + 8 * static_cast<long>(i)), l[i]);
     double* o = out + 8 * static_cast<long>(k);
@@ -164,6 +167,8 @@ void extended_product(const DataColumns& data, Index begin, Index end, const dou
 
 namespace STANCHION_KERNEL_ISA {
 extern const BlockKernels block_table;
-const BlockKernels block_table{panel_times_block, panel_transposed_times_block, extended_product};
+const BlockKernels block_table{{panel_times_block<double>, panel_transposed_times_block<double>},
+                               {panel_times_block<float>, panel_transposed_times_block<float>},
+                               extended_product};
 }  // namespace STANCHION_KERNEL_ISA
 }  // namespace stanchion

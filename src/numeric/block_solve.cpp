@@ -15,8 +15,8 @@ constexpr Index kSolveRows = 512;  ///< rows of one piece of a panel product
 
 /// Work space of one thread.
 struct BlockSolver::Scratch {
-  std::vector<double> local;     ///< rows of the front x kV
-  std::vector<Index> local_of;   ///< position -> row of the current front
+  std::vector<double> local;    ///< rows of the front x kV
+  std::vector<Index> local_of;  ///< position -> row of the current front
 };
 
 BlockSolver::BlockSolver(const Analysis& analysis, const Factor& factor, ThreadPool& pool)
@@ -36,7 +36,8 @@ void BlockSolver::measure_paths() {
   for (std::size_t f = 0; f < children_.size(); ++f) {
     const FactorFront& front = factor_.fronts[f];
     Index from_children = 0;
-    for (const Index child : children_[f]) from_children = std::max(from_children, path[static_cast<std::size_t>(child)]);
+    for (const Index child : children_[f])
+      from_children = std::max(from_children, path[static_cast<std::size_t>(child)]);
     const Index tiles = front.pivots / kSolveTile + 2;
     path[f] = std::max(from_children + static_cast<Index>(children_[f].size()), kSolveTile + 2) + tiles;
     const Index backward = kSolveRows + front.order / kSolveRows + kSolveTile + tiles + 4;
@@ -61,27 +62,30 @@ void BlockSolver::forward_front(Index number, double* block, Scratch& scratch, T
     std::vector<double>().swap(sums);
   }
   // Rows hold sums of l_ik x_k so far; a pivot's row becomes its right-hand side minus that sum.
-  for (Index begin = 0; begin < p; begin += kSolveTile) {
-    const Index end = std::min(begin + kSolveTile, p);
-    for (Index k = begin; k < end; ++k) {
-      const double* right = block + Offset{front.position[k]} * kV;
-      double* own = x + Offset{k} * kV;
-      for (Index v = 0; v < kV; ++v) own[v] = right[v] - own[v];
-    }
-    for (Index k = begin; k < end; ++k) {
-      const double* lower = front.lower.data() + Offset{k} * m;
-      const double* own = x + Offset{k} * kV;
-      for (Index i = k + 1; i < end; ++i) {
-        double* other = x + Offset{i} * kV;
-        for (Index v = 0; v < kV; ++v) other[v] -= lower[i] * own[v];
+  front.with_lower([&](const auto* entries) {
+    for (Index begin = 0; begin < p; begin += kSolveTile) {
+      const Index end = std::min(begin + kSolveTile, p);
+      for (Index k = begin; k < end; ++k) {
+        const double* right = block + Offset{front.position[k]} * kV;
+        double* own = x + Offset{k} * kV;
+        for (Index v = 0; v < kV; ++v) own[v] = right[v] - own[v];
       }
+      for (Index k = begin; k < end; ++k) {
+        const auto* lower = entries + Offset{k} * m;
+        const double* own = x + Offset{k} * kV;
+        for (Index i = k + 1; i < end; ++i) {
+          double* other = x + Offset{i} * kV;
+          for (Index v = 0; v < kV; ++v) other[v] -= lower[i] * own[v];
+        }
+      }
+      for_each_piece(team, (m - end + kSolveRows - 1) / kSolveRows, [&](Offset piece) {
+        const Index row = end + static_cast<Index>(piece) * kSolveRows;
+        block_kernels().panel(entries).times_block(entries + Offset{begin} * m + row, m,
+                                                   std::min(kSolveRows, m - row), end - begin,
+                                                   x + Offset{begin} * kV, x + Offset{row} * kV);
+      });
     }
-    for_each_piece(team, (m - end + kSolveRows - 1) / kSolveRows, [&](Offset piece) {
-      const Index row = end + static_cast<Index>(piece) * kSolveRows;
-      block_kernels().panel_times_block(front.lower.data() + Offset{begin} * m + row, m, std::min(kSolveRows, m - row),
-                                        end - begin, x + Offset{begin} * kV, x + Offset{row} * kV);
-    });
-  }
+  });
   for (Index k = 0; k < p; ++k) std::copy_n(x + Offset{k} * kV, kV, block + Offset{front.position[k]} * kV);
   passed_up_[static_cast<std::size_t>(number)].assign(x + Offset{p} * kV, x + Offset{m} * kV);
 }
@@ -94,34 +98,36 @@ void BlockSolver::backward_front(Index number, double* block, Scratch& scratch, 
   double* x = scratch.local.data();
   double* sums = x + Offset{m} * kV;
   for (Index i = 0; i < m; ++i) std::copy_n(block + Offset{front.position[i]} * kV, kV, x + Offset{i} * kV);
-  const auto add_rows = [&](Index row_begin, Index row_end, Index column_begin, Index column_end) {
-    const Index tiles = (column_end - column_begin + kSolveTile - 1) / kSolveTile;
-    for_each_piece(team, tiles, [&](Offset tile) {
-      const Index begin = column_begin + static_cast<Index>(tile) * kSolveTile;
-      const Index end = std::min(begin + kSolveTile, column_end);
-      for (Index row = row_begin; row < row_end; row += kSolveRows) {
-        block_kernels().panel_transposed_times_block(front.lower.data() + Offset{begin} * m + row, m,
-                                                     std::min(kSolveRows, row_end - row), end - begin,
-                                                     x + Offset{row} * kV, sums + Offset{begin} * kV);
+  front.with_lower([&](const auto* entries) {
+    const auto add_rows = [&](Index row_begin, Index row_end, Index column_begin, Index column_end) {
+      const Index tiles = (column_end - column_begin + kSolveTile - 1) / kSolveTile;
+      for_each_piece(team, tiles, [&](Offset tile) {
+        const Index begin = column_begin + static_cast<Index>(tile) * kSolveTile;
+        const Index end = std::min(begin + kSolveTile, column_end);
+        for (Index row = row_begin; row < row_end; row += kSolveRows) {
+          block_kernels().panel(entries).transposed_times_block(
+              entries + Offset{begin} * m + row, m, std::min(kSolveRows, row_end - row), end - begin,
+              x + Offset{row} * kV, sums + Offset{begin} * kV);
+        }
+      });
+    };
+    add_rows(p, m, 0, p);
+    const Index tiles = (p + kSolveTile - 1) / kSolveTile;
+    for (Index tile = tiles; tile-- > 0;) {
+      const Index begin = tile * kSolveTile, end = std::min(begin + kSolveTile, p);
+      for (Index k = end; k-- > begin;) {
+        const auto* lower = entries + Offset{k} * m;
+        double* own = x + Offset{k} * kV;
+        double* sum = sums + Offset{k} * kV;
+        for (Index i = k + 1; i < end; ++i) {
+          const double* other = x + Offset{i} * kV;
+          for (Index v = 0; v < kV; ++v) sum[v] += lower[i] * other[v];
+        }
+        for (Index v = 0; v < kV; ++v) own[v] -= sum[v];
       }
-    });
-  };
-  add_rows(p, m, 0, p);
-  const Index tiles = (p + kSolveTile - 1) / kSolveTile;
-  for (Index tile = tiles; tile-- > 0;) {
-    const Index begin = tile * kSolveTile, end = std::min(begin + kSolveTile, p);
-    for (Index k = end; k-- > begin;) {
-      const double* lower = front.lower.data() + Offset{k} * m;
-      double* own = x + Offset{k} * kV;
-      double* sum = sums + Offset{k} * kV;
-      for (Index i = k + 1; i < end; ++i) {
-        const double* other = x + Offset{i} * kV;
-        for (Index v = 0; v < kV; ++v) sum[v] += lower[i] * other[v];
-      }
-      for (Index v = 0; v < kV; ++v) own[v] -= sum[v];
+      if (begin > 0) add_rows(begin, end, 0, begin);
     }
-    if (begin > 0) add_rows(begin, end, 0, begin);
-  }
+  });
   for (Index k = 0; k < p; ++k) std::copy_n(x + Offset{k} * kV, kV, block + Offset{front.position[k]} * kV);
 }
 

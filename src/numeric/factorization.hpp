@@ -17,6 +17,7 @@ namespace stanchion {
 struct FactorOptions {
   bool definite = false;      ///< no pivoting, stop at the first pivot that is not positive
   bool keep_factor = false;   ///< keep L and D for solves; otherwise panels are dropped once used
+  bool store_single = false;  ///< with keep_factor: L is rounded to float where it is stored, half the memory
   double pivot_threshold = 0.01;
   std::optional<Offset> memory_cap_bytes;  ///< of the numeric phase
   ProgressCallback progress;
@@ -25,9 +26,21 @@ struct FactorOptions {
 };
 
 /// One eliminated front: L (order x pivots, column-major, unit lower trapezoid), D, and the equations by position.
+/// L is held in one of two precisions; the other buffer is empty.
 struct FactorFront {
   Index pivots = 0, order = 0;
   Buffer<double> lower;
+  Buffer<float> lower_single;
+
+  /// Calls `use` with L's entries, whichever precision they have.
+  template <class Use>
+  void with_lower(const Use& use) const {
+    if (lower_single.empty()) {
+      use(lower.data());
+    } else {
+      use(lower_single.data());
+    }
+  }
   Buffer<double> diagonal, off_diagonal;
   Buffer<PivotKind> kind;
   Buffer<Index> position;  ///< of every row of the front
@@ -69,7 +82,7 @@ Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& m
 Status check_fault(const Analysis& analysis, const Factorization& factorization);
 
 /// x = A^-1 b by the factor, for `columns` right-hand sides stored one after the other (each factor.rows long, in
-/// elimination order), in place. Zero pivots are an error "singular". Cost: 4 entries of L a column.
+/// elimination order), in place. Zero pivots are an error "singular"; L must be in double. Cost: 4 entries of L a column.
 Status solve(const Factor& factor, double* x, Index columns);
 
 /// Solves and refines: x with A x = b until the residual stops falling or `most_steps`. Returns the largest

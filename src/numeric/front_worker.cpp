@@ -124,7 +124,9 @@ Status FrontWorker::process(Index front, ThreadPool* team) {
   count_pivots(rows, result, gamma);
   two_by_two_pivots += result.two_by_two;
   delayed_pivots += rows.candidates - result.eliminated;
-  if (run_.factor != nullptr) keep_panel(rows, matrix, result.eliminated);
+  if (run_.factor != nullptr) {
+    if (Status kept = keep_panel(rows, matrix, result.eliminated); !kept.ok()) return kept;
+  }
   pack(rows, matrix, result, gamma, base);
   return {};
 }
@@ -171,31 +173,48 @@ void FrontWorker::count_pivots(const FrontRows& rows, const EliminationResult& r
     const auto i = static_cast<std::size_t>(k);
     const double bound = row_error_[i] + gamma * growth_[i] + tiny;
     // A NaN must not pass for a small number.
-    if (!(bound <= largest_row_error)) largest_row_error = bound;
+    if (!(bound <= largest_row_error)) largest_row_error = std::isnan(bound) ? INFINITY : bound;
     check_image(k, bound);
   }
 }
 
-void FrontWorker::keep_panel(const FrontRows& rows, const BlockLower& matrix, Index eliminated) {
+Status FrontWorker::keep_panel(const FrontRows& rows, const BlockLower& matrix, Index eliminated) {
   FactorFront& kept = run_.factor->fronts[static_cast<std::size_t>(rows.front)];
   kept.pivots = eliminated;
   kept.order = rows.order;
-  kept.lower = Buffer<double>(Offset{rows.order} * eliminated);
+  const Offset entries = Offset{rows.order} * eliminated;
+  const bool single = run_.options.store_single;
+  if (!run_.book(entries * (single ? Offset{sizeof(float)} : Offset{sizeof(double)}))) {
+    return memory_limit(run_.bytes.load());
+  }
+  if (single) {
+    kept.lower_single = Buffer<float>(entries);
+  } else {
+    kept.lower = Buffer<double>(entries);
+  }
   kept.diagonal = Buffer<double>(eliminated);
   kept.off_diagonal = Buffer<double>(eliminated);
   kept.kind = Buffer<PivotKind>(eliminated);
   kept.position = Buffer<Index>(rows.order);
   std::copy_n(label_.begin(), rows.order, kept.position.begin());
   for (Index k = 0; k < eliminated; ++k) {
-    double* target = kept.lower.data() + Offset{k} * rows.order;
-    std::fill(target, target + k, 0.0);
-    std::copy_n(matrix.column(k, k), rows.order - k, target + k);
-    target[k] = 1;
+    const double* source = matrix.column(k, k) - k;
+    const auto store = [&](auto* target) {
+      using Scalar = std::remove_reference_t<decltype(*target)>;
+      std::fill(target, target + k, Scalar{0});
+      for (Index i = k + 1; i < rows.order; ++i) target[i] = static_cast<Scalar>(source[i]);
+      target[k] = 1;
+    };
+    if (single) {
+      store(kept.lower_single.data() + Offset{k} * rows.order);
+    } else {
+      store(kept.lower.data() + Offset{k} * rows.order);
+    }
     kept.diagonal[k] = diagonal_[static_cast<std::size_t>(k)];
     kept.off_diagonal[k] = off_diagonal_[static_cast<std::size_t>(k)];
     kept.kind[k] = kind_[static_cast<std::size_t>(k)];
   }
-  run_.book(kept.lower.size() * Offset{sizeof(double)});
+  return {};
 }
 
 void FrontWorker::pack(const FrontRows& rows, const BlockLower& matrix, const EliminationResult& result, double gamma,

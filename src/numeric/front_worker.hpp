@@ -81,7 +81,7 @@ class FrontWorker {
   void count_pivots(const FrontRows& rows, const EliminationResult& result, double gamma);
   void bound_images(const FrontRows& rows, const EliminationResult& result);
   void check_image(Index row, double bound);
-  void keep_panel(const FrontRows& rows, const BlockLower& matrix, Index eliminated);
+  Status keep_panel(const FrontRows& rows, const BlockLower& matrix, Index eliminated);
   void pack(const FrontRows& rows, const BlockLower& matrix, const EliminationResult& result, double gamma,
             double* destination);
   Status book_arena();

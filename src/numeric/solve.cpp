@@ -1,5 +1,6 @@
 #include <algorithm>
 #include <cmath>
+#include <new>
 #include <vector>
 
 #include "dense/blas.hpp"
@@ -88,8 +89,13 @@ void backward(const FactorFront& front, double* x, Index rows, Index columns, Ga
 
 }  // namespace
 
-Status solve(const Factor& factor, double* x, Index columns) {
+namespace {
+
+Status solve_or_throw(const Factor& factor, double* x, Index columns) {
   Gathered part;
+  for (const FactorFront& front : factor.fronts) {
+    if (!front.lower_single.empty()) return Status::internal("solve() needs L in double precision");
+  }
   for (const FactorFront& front : factor.fronts) forward(front, x, factor.rows, columns, part);
   for (const FactorFront& front : factor.fronts) {
     if (Status divided = divide(front, x, factor.rows, columns); !divided.ok()) return divided;
@@ -98,14 +104,14 @@ Status solve(const Factor& factor, double* x, Index columns) {
   return {};
 }
 
-Status solve_refined(const Factor& factor, const ShiftedMatrix& matrix, std::span<const double> b,
-                     std::span<double> x, int most_steps, double* backward_error) {
+Status solve_refined_or_throw(const Factor& factor, const ShiftedMatrix& matrix, std::span<const double> b,
+                              std::span<double> x, int most_steps, double* backward_error) {
   const auto n = static_cast<std::size_t>(factor.rows);
   std::vector<double> residual(b.begin(), b.end()), product(n), size(n), best(n);
   std::fill(x.begin(), x.end(), 0.0);
   double error = INFINITY;
   for (int step = 0; step <= most_steps; ++step) {
-    if (Status solved = solve(factor, residual.data(), 1); !solved.ok()) return solved;
+    if (Status solved = solve_or_throw(factor, residual.data(), 1); !solved.ok()) return solved;
     for (std::size_t i = 0; i < n; ++i) x[i] += residual[i];
     multiply(matrix, x, product);
     std::vector<double> absolute(n);
@@ -130,6 +136,29 @@ Status solve_refined(const Factor& factor, const ShiftedMatrix& matrix, std::spa
   std::copy(best.begin(), best.end(), x.begin());
   *backward_error = error;
   return {};
+}
+
+Status no_memory() {
+  return Status::resource_limit("out-of-memory", "the system has no more memory for a solve", "", "free memory");
+}
+
+}  // namespace
+
+Status solve(const Factor& factor, double* x, Index columns) {
+  try {
+    return solve_or_throw(factor, x, columns);
+  } catch (const std::bad_alloc&) {
+    return no_memory();
+  }
+}
+
+Status solve_refined(const Factor& factor, const ShiftedMatrix& matrix, std::span<const double> b,
+                     std::span<double> x, int most_steps, double* backward_error) {
+  try {
+    return solve_refined_or_throw(factor, matrix, b, x, most_steps, backward_error);
+  } catch (const std::bad_alloc&) {
+    return no_memory();
+  }
 }
 
 }  // namespace stanchion

@@ -128,6 +128,7 @@ ShiftCount count_of(const Member& claim) {
   count.below_range = pair_of<Index>(claim.at("below_range"), index_of);
   count.holds_outside = unless_null(claim.at("holds_outside"),
                                     [](const Member& band) { return pair_of<double>(band, real_of); });
+  count.no_eigenvalue_within = unless_null(claim.at("no_eigenvalue_within"), real_of);
   count.certificate = certificate_of(claim.at("certificate"));
   return count;
 }

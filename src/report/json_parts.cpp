@@ -67,6 +67,7 @@ Json json_of(const ShiftCount& count) {
           {"failure_probability", json_of(count.failure_probability)},
           {"below_range", json_of(count.below_range)},
           {"holds_outside", json_of(count.holds_outside)},
+          {"no_eigenvalue_within", json_of(count.no_eigenvalue_within)},
           {"certificate", json_of(count.certificate)}};
 }
 

@@ -47,6 +47,7 @@ std::string backing(const ShiftCount& count, Index rows_counted) {
   if (count.method == "offsets") {
     text += count.certificate.runs.size() == 1 ? ", from one factor" : ", from factors on both sides";
   }
+  if (count.no_eigenvalue_within) text += "; none within " + rounded(*count.no_eigenvalue_within);
   const auto& precision = count.certificate.precision;
   if (precision && *precision != "double") text += ", in " + *precision + " precision";
   return text;

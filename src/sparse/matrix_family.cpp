@@ -93,7 +93,7 @@ double ShiftedMatrix::entry_error(Offset k, Index row, Index column) const {
   }
   // One product and at most (members - 1) additions a term; the scale is a power of two.
   const double gamma = static_cast<double>(coefficients.size() + 1) * kUnit;
-  return gamma * magnitude * (*scale)[row] * (*scale)[column] + static_cast<double>(coefficients.size() + 1) * kTiny;
+  return gamma * magnitude * ((*scale)[row] * (*scale)[column]) + static_cast<double>(coefficients.size() + 1) * kTiny;
 }
 
 }  // namespace stanchion

@@ -38,7 +38,7 @@ struct ShiftedMatrix {
   double entry(Offset k, Index row, Index column) const {
     double sum = coefficients[0] * family->values[0][k];
     for (std::size_t t = 1; t < coefficients.size(); ++t) sum += coefficients[t] * family->values[t][k];
-    return sum * (*scale)[row] * (*scale)[column];
+    return sum * ((*scale)[row] * (*scale)[column]);  // one exact power of two: at most one underflow
   }
 
   /// Bound on the rounding of entry(k): products, additions, and a possible underflow when scaling.

@@ -1,12 +1,15 @@
 #include "symbolic/analysis.hpp"
 
 #include <algorithm>
+#include <new>
 
 #include "base/clock.hpp"
 
 namespace stanchion {
 
-Result<Analysis> analyse(const OrderingInput& input, int workers) {
+namespace {
+
+Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   Analysis analysis;
   Stopwatch watch;
   auto elimination = order_equations(input);
@@ -32,6 +35,17 @@ Result<Analysis> analyse(const OrderingInput& input, int workers) {
   forecast.peak_bytes_solve = forecast.peak_bytes_count + forecast.stored_factor_entries * kDouble;
   analysis.analyse_seconds = watch.seconds();
   return analysis;
+}
+
+}  // namespace
+
+Result<Analysis> analyse(const OrderingInput& input, int workers) {
+  try {
+    return analyse_or_throw(input, workers);
+  } catch (const std::bad_alloc&) {
+    return Status::resource_limit("out-of-memory", "the system has no more memory for the analysis", "",
+                                  "free memory, or give --dofs so that nodes, not equations, are ordered");
+  }
 }
 
 }  // namespace stanchion

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <functional>
 #include <limits>
+#include <utility>
 
 #include "dense/block_lower.hpp"
 
@@ -39,17 +40,19 @@ TreeShape shape_of(const AssemblyTree& tree) {
   return shape;
 }
 
-Offset front_doubles(const AssemblyTree& tree, Index f) { return front_layout(tree.order(f)).size(); }
-Offset result_doubles(const AssemblyTree& tree, Index f) { return contribution_doubles(tree.below(f)); }
+/// Blocks of an arena start on cache lines.
+Offset rounded_up(Offset doubles) { return (doubles + 7) / 8 * 8; }
+Offset front_doubles(const AssemblyTree& tree, Index f) { return rounded_up(front_layout(tree.order(f)).size()); }
+Offset result_doubles(const AssemblyTree& tree, Index f) { return rounded_up(contribution_doubles(tree.below(f))); }
 
 /// High-water mark of a last-in-first-out stack over the fronts named, in order.
-template <class Fronts>
-Offset stack_peak(const AssemblyTree& tree, const Fronts& fronts, const std::vector<char>& on_this_stack) {
-  std::vector<Offset> waiting(static_cast<std::size_t>(tree.fronts), 0);
+/// `waiting`: zeros, one a front; zeros again afterwards.
+Offset stack_peak(const AssemblyTree& tree, const std::vector<Index>& fronts, const std::vector<char>& on_this_stack,
+                  std::vector<Offset>& waiting) {
   Offset top = 0, peak = 0;
   for (const Index f : fronts) {
     peak = std::max(peak, top + front_doubles(tree, f));
-    top += result_doubles(tree, f) - waiting[static_cast<std::size_t>(f)];
+    top += result_doubles(tree, f) - std::exchange(waiting[static_cast<std::size_t>(f)], 0);
     const Index up = tree.parent[f];
     if (up >= 0 && on_this_stack[static_cast<std::size_t>(up)]) {
       waiting[static_cast<std::size_t>(up)] += result_doubles(tree, f);
@@ -183,13 +186,14 @@ Schedule make_schedule(const AssemblyTree& tree, int workers) {
 
   std::vector<Index> fronts;
   std::vector<char> inside(static_cast<std::size_t>(tree.fronts), 0);
+  std::vector<Offset> waiting(static_cast<std::size_t>(tree.fronts), 0);
   for (Subtree& subtree : schedule.subtrees) {
     fronts.clear();
     for (Index f = subtree.first; f < subtree.end; ++f) {
       fronts.push_back(f);
       inside[static_cast<std::size_t>(f)] = 1;
     }
-    subtree.arena_doubles = stack_peak(tree, fronts, inside);
+    subtree.arena_doubles = stack_peak(tree, fronts, inside, waiting);
     subtree.result_doubles = result_doubles(tree, subtree.end - 1);
     schedule.worker_arena_doubles = std::max(schedule.worker_arena_doubles, subtree.arena_doubles);
     for (const Index f : fronts) inside[static_cast<std::size_t>(f)] = 0;
@@ -200,8 +204,9 @@ Schedule make_schedule(const AssemblyTree& tree, int workers) {
     largest = std::max(largest, tree.order(f));
     widest = std::max(widest, tree.pivots(f));
   }
-  schedule.shared_arena_doubles = stack_peak(tree, schedule.shared_fronts, shared);
-  schedule.panel_doubles = Offset{largest} * std::min<Index>(widest, kFrontBlock);
+  schedule.shared_arena_doubles = stack_peak(tree, schedule.shared_fronts, shared, waiting);
+  // A worker's scratch: the panel of the widest front, and its map of all rows.
+  schedule.panel_doubles = Offset{front_layout(largest).padded} * std::min<Index>(widest, kFrontBlock) + tree.rows / 2 + 1;
   choose_waves(tree, schedule);
   return schedule;
 }
