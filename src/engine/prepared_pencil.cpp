@@ -140,6 +140,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   outcome.work.supernodes = pencil.analysis_.tree.fronts;
   outcome.work.largest_front = forecast.largest_front;
   const Offset resident = resident_bytes();
+  pencil.resident_before_ = resident;
   outcome.memory.forecast = std::max(peak_resident_bytes(), resident + forecast.peak_bytes_count);
   if (Status fits = check_cap(request, outcome.memory.forecast); !fits.ok()) return fits;
   if (forecast.factor_flops > kLongJobFlops && context.progress) context.progress("self-test", 0);
@@ -186,6 +187,9 @@ Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const 
   }
   outcome.timings.factor += certified->seconds;
   outcome.timings.certify += certified->certify_seconds;
+  if (certified->certify_seconds > 0) {  // a factor was kept
+    outcome.memory.forecast = std::max(outcome.memory.forecast, resident_before_ + analysis_.forecast.peak_bytes_solve);
+  }
   outcome.work.factorizations += certified->factorizations;
   outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified->delayed_pivots);
   outcome.work.two_by_two_pivots = std::max(outcome.work.two_by_two_pivots, certified->two_by_two_pivots);

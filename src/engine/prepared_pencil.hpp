@@ -60,6 +60,7 @@ class PreparedPencil {
   std::vector<double> added_factors_;
   bool has_second_ = false, extended_ = false;
   double second_bound_ = 0;
+  Offset resident_before_ = 0;  ///< of the process, before the first factorization
   std::optional<double> resolution_;
   std::optional<Offset> memory_cap_;
   FactorOptions factor_options_;
