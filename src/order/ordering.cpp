@@ -8,6 +8,7 @@
 #include "order/dissection.hpp"
 #include "order/elimination_tree.hpp"
 #include "order/minimum_degree.hpp"
+#include "order/permutation.hpp"
 
 namespace stanchion {
 namespace {
@@ -15,12 +16,6 @@ namespace {
 constexpr Index kDissectAbove = 120;     // smaller parts: minimum degree alone
 constexpr Index kTryBothUpTo = 20'000;   // minimum degree is then a small part of the time
 constexpr double kThinDegree = 3.0;      // chains and trees: dissection only adds fill
-
-Buffer<Index> inverse_of(const Buffer<Index>& permutation) {
-  Buffer<Index> inverse(permutation.size());
-  for (Offset k = 0; k < permutation.size(); ++k) inverse[permutation[k]] = static_cast<Index>(k);
-  return inverse;
-}
 
 /// Operations of the factorization under this order.
 double predicted_flops(const Graph& graph, const Buffer<Index>& vertex_at) {

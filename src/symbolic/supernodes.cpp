@@ -4,15 +4,10 @@
 
 #include "order/column_counts.hpp"
 #include "order/elimination_tree.hpp"
+#include "order/permutation.hpp"
 
 namespace stanchion {
 namespace {
-
-Buffer<Index> inverse_of(const Buffer<Index>& permutation) {
-  Buffer<Index> inverse(permutation.size());
-  for (Offset k = 0; k < permutation.size(); ++k) inverse[permutation[k]] = static_cast<Index>(k);
-  return inverse;
-}
 
 struct Columns {
   Buffer<Index> vertex_at, parent;
