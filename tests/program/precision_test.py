@@ -33,7 +33,7 @@ class PrecisionTest(ProgramTest):
         self.assertEqual(counted["counts"][0]["certificate"]["precision"], "extended")
 
     def test_extended_tells_what_double_cannot(self):
-        path = self.matrix("K.mtx", 400, ring(400))
+        path = self.matrix("K.mtx", 8000, ring(8000))
         self.assertEqual(self.expect(0, "check", path, "--precision", "extended")["verdict"], "positive_definite")
         double = self.expect(1, "check", path)
         self.assertEqual(double["verdict"], "positive_semidefinite")
