@@ -2,6 +2,7 @@
 
 import os
 import pty
+import random
 import select
 import signal
 import subprocess
@@ -40,6 +41,17 @@ class InterruptTest(ProgramTest):
                 self.assertRegex(errors, r"^stanchion: .*\[interrupted\]\n")
                 self.assertEqual(sorted(os.listdir(self.folder)), ["K.mtx", "run.log"])
                 self.log.unlink()
+
+    def test_a_request_at_any_moment_ends_it(self):
+        # Reading, ordering (METIS handles SIGTERM in its own way, if it is let), analysing, factoring.
+        moments = random.Random(3)
+        for number in (signal.SIGTERM, signal.SIGINT) * 15:
+            process = self.start(stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True)
+            time.sleep(moments.uniform(0, 0.03))
+            process.send_signal(number)
+            process.communicate(timeout=60)
+            self.assertEqual(process.returncode, 130)
+            self.log.unlink()
 
     def test_progress_only_on_a_terminal_and_erased_at_the_end(self):
         terminal, inner = pty.openpty()
