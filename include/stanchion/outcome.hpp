@@ -98,6 +98,98 @@ struct CountOutcome {
   std::vector<std::string> sentences;  ///< consequences worth saying (convexity, factors on the other side)
 };
 
+/// Values that lie between two neighbouring shifts of a sweep.
+struct Jump {
+  double low = 0, high = 0;
+  Index count = 0;  ///< of values in [low, high]; for K not definite: change of the inertia, of either sign
+};
+
+/// Two certified counts that cannot both be true: a defect of the machine or the program.
+struct Contradiction {
+  double shift = 0, other_shift = 0;
+  Index least = 0, most = 0;  ///< at least so many values by the one, at most so many by the other
+};
+
+struct SweepOutcome {
+  std::vector<Jump> jumps;  ///< ascending; count, with every shift ascending, is in Outcome::count
+  std::vector<Contradiction> contradictions;
+  int side_by_side = 1;  ///< shifts that ran at a time, as the memory forecast allowed
+  Index resumed = 0;     ///< counts taken over from an interrupted sweep
+};
+
+/// A mode shape of a bracketed value.
+struct Mode {
+  std::vector<double> shape;    ///< one entry per equation of the files, zero where struck; largest entry 1
+  double rayleigh_quotient = 0; ///< as computed: the value of the pencil that belongs to the shape
+  double residual = 0;          ///< relative, in the energy norm: no further from a value than this
+};
+
+/// One eigenvalue, or a group that is not told apart, in an interval that certainly holds it.
+struct CriticalValue {
+  double value = 0, low = 0, high = 0;
+  Index multiplicity = 1;  ///< eigenvalues in [low, high]
+  Level level = Level::kNone;
+  std::string proof;  ///< "counts" or "residual"
+  std::optional<double> failure_probability;
+  bool rigid_body = false;  ///< K - s M with K singular: the zeros, apart from the frequencies
+  std::vector<Mode> modes;
+};
+
+/// How many values a range holds, by certified counts at its ends.
+struct CountedRange {
+  double from = 0, to = 0;
+  std::optional<Index> count;
+  Level level = Level::kNone;
+  std::optional<double> failure_probability;
+};
+
+struct BracketOutcome {
+  std::vector<CriticalValue> critical;  ///< ascending
+  std::optional<CountedRange> complete; ///< absent: completeness is not shown
+  std::optional<CountedRange> other_side;
+  std::optional<bool> none_below;  ///< of the range asked; absent when it could not be told
+  Index more_than_asked = 0;       ///< a cluster at the end was taken in whole
+  bool in_hertz = false;           ///< frequencies were asked for; `critical` is in s all the same
+  std::vector<std::string> sentences;
+};
+
+enum class AuditVerdict { kComplete, kMissing, kSurplus, kMissingAndSurplus, kUnresolved };
+
+/// A stretch of the audited range where list and count differ.
+struct AuditGap {
+  double low = 0, high = 0;
+  Index listed = 0, counted = 0;
+  std::vector<std::string> labels;  ///< of the values listed in it: label, or the number itself
+};
+
+struct AuditOutcome {
+  AuditVerdict verdict = AuditVerdict::kUnresolved;
+  std::vector<AuditGap> gaps;
+  CountedRange range;
+  Index listed = 0;           ///< values in the range
+  Index outside = 0;          ///< values left out, outside the range asked
+  std::string proof;          ///< "counts": every stretch between two counts holds as many as are listed
+  std::vector<CriticalValue> missing;  ///< with find_missing: brackets of what the gaps hold
+  std::vector<std::string> sentences;
+  bool in_hertz = false;
+};
+
+/// One matrix of a load path.
+struct PathStep {
+  std::string path;
+  std::string sha256;
+  Verdict verdict = Verdict::kUnresolved;
+  Inertia inertia;
+  Certificate certificate;
+  bool changed = false;  ///< the inertia differs from that of the step before
+};
+
+struct PathOutcome {
+  std::vector<PathStep> steps;
+  std::optional<Index> first_not_definite;  ///< number of the step, from 1
+  std::optional<Index> first_negative;      ///< the first with a certified negative direction
+};
+
 struct ForecastOutcome {
   Offset factor_entries = 0;
   double factor_flops = 0;
@@ -145,7 +237,8 @@ struct HostRecord {
   std::string blas, isa;
 };
 
-/// Everything a report needs. Exactly one of check, count, forecast is present.
+/// Everything a report needs. Exactly one of check, count, bracket, audit, forecast is present; with `sweep` also count,
+/// with `path` also check (of the step that decides).
 struct Outcome {
   std::string command;
   std::vector<std::string> arguments;
@@ -167,6 +260,10 @@ struct Outcome {
   std::optional<std::string> title, reference;
   std::optional<CheckOutcome> check;
   std::optional<CountOutcome> count;
+  std::optional<SweepOutcome> sweep;
+  std::optional<BracketOutcome> bracket;
+  std::optional<AuditOutcome> audit;
+  std::optional<PathOutcome> path;
   std::optional<ForecastOutcome> forecast;
 };
 

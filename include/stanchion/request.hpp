@@ -40,10 +40,61 @@ struct InputRequest {
   std::optional<Index> rows;       ///< for triplet text with empty last rows
 };
 
+/// Unit of values and of the ends of ranges; inside everything is in the pencil's own (factor, or s = omega^2).
+enum class ValueUnit {
+  kFactor,  ///< of K + f G, or eigenvalues of K itself
+  kOmega2,  ///< s of K - s M
+  kHertz,   ///< sqrt(s) / (2 pi), of K - s M
+};
+
+/// For sweep: where to count.
+struct SweepRequest {
+  double from = 0, to = 0;     ///< in the pencil's unit, from < to
+  Index points = 0;            ///< at least 2, both ends included
+  bool geometric = false;      ///< equal ratios instead of equal steps; both ends of one sign
+  bool refine = false;         ///< new shifts where the count jumps
+  double width = 1e-3;         ///< refine: until a jump is of one, or narrower than this relative width
+};
+
+/// Which factors of K + f G are asked.
+enum class Side { kPositive, kNegative, kBoth };
+
+enum class BracketMethod {
+  kResidual,  ///< close estimates from one kept factor, rigorous residual intervals, counts at the ends
+  kCounts,    ///< bisection by counts alone
+};
+
+/// For bracket: exactly one of `first` and a range (`from` and `to`; below B is the range from 0, or from
+/// everything, to B).
+struct BracketRequest {
+  std::optional<Index> first;
+  std::optional<double> from, to;  ///< in `unit`
+  bool below = false;              ///< the range was given as one number: `to` (or, negative, `from`)
+  Side side = Side::kPositive;
+  ValueUnit unit = ValueUnit::kFactor;
+  BracketMethod method = BracketMethod::kResidual;
+  double width = 1e-8;     ///< relative width asked of a bracket
+  bool safety = false;     ///< only whether there is none in the range
+  bool want_modes = false; ///< keep the mode shapes
+};
+
+/// For audit: somebody's list.
+struct AuditRequest {
+  std::string values;              ///< CSV: value, and optionally tolerance and label
+  ValueUnit unit = ValueUnit::kFactor;
+  std::optional<double> tolerance; ///< relative half width of values that state none
+  std::optional<double> from, to;  ///< range to be judged, in `unit`; absent: that of the list
+  bool find_missing = false;
+};
+
 struct Request {
   InputRequest input;
   Pencil pencil = Pencil::kStiffness;
   std::vector<double> shifts;  ///< for count
+  SweepRequest sweep;
+  BracketRequest bracket;
+  AuditRequest audit;
+  std::vector<std::string> steps;  ///< check: matrices of one pattern after the first, a load path in order
   int threads = 0;             ///< 0: all processors available
   std::optional<Offset> memory_cap_bytes;
   std::optional<double> resolution;

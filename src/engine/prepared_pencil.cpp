@@ -173,17 +173,23 @@ ShiftedMatrix PreparedPencil::second_alone() const {
 
 Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                              Outcome& outcome) {
-  CertifyOptions certify_options{options, extended_ ? nullptr : risk_.get(), seed_, bytes_for_factor()};
+  return run_on(matrix, {options, nullptr, seed_, bytes_for_factor(), nullptr}, *risk_, pool, outcome);
+}
+
+Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, const CertifyOptions& options,
+                                                RiskBudget& risk, ThreadPool& pool, Outcome& outcome) const {
+  CertifyOptions certify_options = options;
+  certify_options.risk = extended_ ? nullptr : &risk;
   certify_options.offsets.extended = extended_;
   const ShiftedMatrix second = second_alone();
   if (has_second_) certify_options.second = &second;
-  const double spent_before = risk_->spent();
+  const double spent_before = risk.spent();
   auto certified = certify_inertia(analysis_, matrix, certify_options, pool);
   if (!certified.ok()) return certified.status();
-  outcome.risk = risk_->spent();
-  if (risk_->spent() > spent_before) {
+  outcome.risk = risk.spent();
+  if (risk.spent() > spent_before) {
     outcome.events.push_back({has_second_ ? std::optional(matrix.coefficients.back()) : std::nullopt,
-                              risk_->spent() - spent_before, certified->certificate.level == Level::kStatistical});
+                              risk.spent() - spent_before, certified->certificate.level == Level::kStatistical});
   }
   outcome.timings.factor += certified->seconds;
   outcome.timings.certify += certified->certify_seconds;
@@ -194,6 +200,45 @@ Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const 
   outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified->delayed_pivots);
   outcome.work.two_by_two_pivots = std::max(outcome.work.two_by_two_pivots, certified->two_by_two_pivots);
   return certified;
+}
+
+Result<CertifiedInertia> PreparedPencil::certify_apart(double factor, bool definite_first, double data_error,
+                                                       Index number, int share, ThreadPool& pool,
+                                                       Outcome& scratch) const {
+  CertifyOptions options;
+  options.offsets.definite_first = definite_first;
+  options.offsets.resolution = resolution_;
+  options.offsets.data_error = data_error;
+  options.offsets.factor = factor_options_;
+  options.offsets.factor.progress = nullptr;  // never from two at once
+  if (options.offsets.factor.memory_cap_bytes) *options.offsets.factor.memory_cap_bytes /= share;
+  options.most_factor_bytes = bytes_for_factor() / share;
+  options.seed = CounterRandom::combine(seed_, static_cast<std::uint64_t>(number));
+  RiskBudget risk(event_share(risk_->total(), number));
+  return run_on(combination(factor), options, risk, pool, scratch);
+}
+
+void PreparedPencil::merge(const Outcome& scratch, Outcome& outcome) {
+  outcome.timings.factor += scratch.timings.factor;
+  outcome.timings.certify += scratch.timings.certify;
+  outcome.memory.forecast = std::max(outcome.memory.forecast, scratch.memory.forecast);
+  outcome.work.factorizations += scratch.work.factorizations;
+  outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, scratch.work.delayed_pivots);
+  outcome.work.two_by_two_pivots = std::max(outcome.work.two_by_two_pivots, scratch.work.two_by_two_pivots);
+  outcome.warnings.insert(outcome.warnings.end(), scratch.warnings.begin(), scratch.warnings.end());
+  outcome.events.insert(outcome.events.end(), scratch.events.begin(), scratch.events.end());
+  risk_->take(scratch.risk);
+  outcome.risk = risk_->spent();
+}
+
+int PreparedPencil::side_by_side(int most) const {
+  const Offset each = extended_ ? 3 * analysis_.forecast.peak_bytes_count : analysis_.forecast.peak_bytes_solve;
+  const Offset room = bytes_for_factor();
+  return static_cast<int>(std::clamp<Offset>(each > 0 ? room / each : most, 1, std::max(most, 1)));
+}
+
+double PreparedPencil::size_ratio() const {
+  return has_second_ ? infinity_norm(combination(0)) / infinity_norm(second_alone()) : 0;
 }
 
 Result<CertifiedInertia> PreparedPencil::certify(double factor, bool definite_first, double data_error,

@@ -28,6 +28,23 @@ class PreparedPencil {
   Result<CertifiedInertia> certify(double factor, bool definite_first, double data_error, ThreadPool& pool,
                                    Outcome& outcome);
 
+  /// As certify(), with a risk of its own: what event `number` of the document may fail with. Safe to call side by side,
+  /// each call with its own `pool` and `scratch`; each may keep a factor in one of `share` parts of the memory.
+  Result<CertifiedInertia> certify_apart(double factor, bool definite_first, double data_error, Index number, int share,
+                                         ThreadPool& pool, Outcome& scratch) const;
+
+  /// Numbers for `many` calls of certify_apart: the first of them.
+  Index reserve_events(Index many) { return risk_->reserve(many); }
+
+  /// Books what `scratch` holds of time, work, risk and warnings into `outcome`.
+  void merge(const Outcome& scratch, Outcome& outcome);
+
+  /// How many factorizations may run side by side, each with the forecast memory, at most `most`.
+  int side_by_side(int most) const;
+
+  /// ||S K S|| over ||S (second) S||, in the infinity norm: the factor at which the two are of one size.
+  double size_ratio() const;
+
   /// A vector x with x^T A x < 0 beyond its rounding, A = K with what is added; nothing when none is found. Its entries
   /// are placed by `original` (see ModelInput) among `file_rows` equations. Keeps a factor for the while.
   Result<std::optional<Witness>> find_witness(const std::vector<Index>& original, Index file_rows, ThreadPool& pool,
@@ -44,14 +61,18 @@ class PreparedPencil {
   /// Half a unit of decimal digit `digits` of every entry at `factor`, as a bound on the 2-norm.
   double digits_error(double factor, int digits) const;
 
+  /// K with what is added, plus `factor` times the second matrix: scaled, in elimination order.
+  ShiftedMatrix combination(double factor) const;
+
   const Analysis& analysis() const { return analysis_; }
   bool has_second() const { return has_second_; }
 
  private:
-  ShiftedMatrix combination(double factor) const;
   ShiftedMatrix second_alone() const;
   Result<CertifiedInertia> run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                Outcome& outcome);
+  Result<CertifiedInertia> run_on(const ShiftedMatrix& matrix, const CertifyOptions& options, RiskBudget& risk,
+                                  ThreadPool& pool, Outcome& outcome) const;
   Offset bytes_for_factor() const;
 
   Analysis analysis_;

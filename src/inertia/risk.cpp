@@ -4,10 +4,13 @@
 
 namespace stanchion {
 
+double event_share(double risk, Index number) {
+  const double j = number;
+  return 6 / (M_PI * M_PI * j * j) * risk * (1 - 0x1p-40);
+}
+
 double RiskBudget::charge() {
-  ++attempts_;
-  const double j = attempts_;
-  const double share = 6 / (M_PI * M_PI * j * j) * risk_ * (1 - 0x1p-40);
+  const double share = event_share(risk_, ++attempts_);
   spent_ += share;
   return share;
 }

@@ -18,6 +18,16 @@ class RiskBudget {
   /// Charges the next attempt and returns what it may fail with; its number is attempts() afterwards.
   double charge();
 
+  /// Sets the next `events` attempts apart for parts with budgets of their own (see event_share); the number of the
+  /// first.
+  Index reserve(Index events) {
+    attempts_ += events;
+    return attempts_ - events + 1;
+  }
+
+  /// Books what a part of the document with a budget of its own has spent; event_share() keeps the sum within the risk.
+  void take(double spent) { spent_ += spent; }
+
   double spent() const { return spent_; }
   double total() const { return risk_; }
   Index attempts() const { return attempts_; }
@@ -26,6 +36,10 @@ class RiskBudget {
   double risk_, spent_;
   Index attempts_;
 };
+
+/// What event `number` (from 1, each used once) of a document may fail with: 6 risk / (pi^2 number^2), so that any
+/// number of events together stay within the risk. charge() gives the same to the attempts in their order.
+double event_share(double risk, Index number);
 
 /// g with P(max over `vectors` of ||B x|| <= g ||B||) <= failure for standard Gaussian x and any matrix B: the largest
 /// singular direction alone gives |N(0,1)| <= g with probability erf(g / sqrt 2) for each vector (Halko, Martinsson,

@@ -38,6 +38,12 @@ const char* name_of(Question question) {
       return "check";
     case Question::kCount:
       return "count";
+    case Question::kSweep:
+      return "sweep";
+    case Question::kBracket:
+      return "bracket";
+    case Question::kAudit:
+      return "audit";
     case Question::kForecast:
       break;
   }

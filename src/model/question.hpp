@@ -3,6 +3,6 @@
 
 namespace stanchion {
 
-enum class Question { kCheck, kCount, kForecast };
+enum class Question { kCheck, kCount, kSweep, kBracket, kAudit, kForecast };
 
 }  // namespace stanchion

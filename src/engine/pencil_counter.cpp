@@ -1,0 +1,371 @@
+#include "engine/pencil_counter.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <cstdio>
+
+namespace stanchion {
+namespace {
+
+std::string number_text(double value) {
+  char text[32];
+  std::snprintf(text, sizeof(text), "%.10g", value);
+  return text;
+}
+
+/// Rows where M is entirely absent, when M is diagonal; nothing when M has off-diagonal entries.
+struct MassFacts {
+  bool diagonal = true;
+  bool non_negative = true;  ///< of the diagonal
+  std::vector<Index> massless;
+};
+
+MassFacts inspect_mass(const SymmetricMatrix& mass) {
+  MassFacts facts;
+  std::vector<char> present(static_cast<std::size_t>(mass.rows), 0);
+  for (Index j = 0; j < mass.rows; ++j) {
+    for (Offset k = mass.column_start[j]; k < mass.column_start[Offset{j} + 1]; ++k) {
+      if (mass.value[k] == 0) continue;
+      present[static_cast<std::size_t>(j)] = present[static_cast<std::size_t>(mass.row[k])] = 1;
+      if (mass.row[k] != j) {
+        facts.diagonal = false;
+      } else if (mass.value[k] < 0) {
+        facts.non_negative = false;
+      }
+    }
+  }
+  for (Index i = 0; i < mass.rows; ++i) {
+    if (!present[static_cast<std::size_t>(i)]) facts.massless.push_back(i);
+  }
+  return facts;
+}
+
+/// The rows that are not in the ascending list `rows`.
+std::vector<Index> others(const std::vector<Index>& rows, Index all) {
+  std::vector<Index> rest;
+  auto next = rows.begin();
+  for (Index i = 0; i < all; ++i) {
+    if (next != rows.end() && *next == i) {
+      ++next;
+    } else {
+      rest.push_back(i);
+    }
+  }
+  return rest;
+}
+
+/// The rows and columns `keep` of a matrix.
+SymmetricMatrix principal_submatrix(const SymmetricMatrix& matrix, const std::vector<Index>& keep) {
+  std::vector<Index> number_of(static_cast<std::size_t>(matrix.rows), -1);
+  for (std::size_t i = 0; i < keep.size(); ++i) number_of[static_cast<std::size_t>(keep[i])] = static_cast<Index>(i);
+  std::vector<Triplet> entries;
+  for (const Index j : keep) {
+    for (Offset k = matrix.column_start[j]; k < matrix.column_start[Offset{j} + 1]; ++k) {
+      const Index i = number_of[static_cast<std::size_t>(matrix.row[k])];
+      if (i >= 0) entries.push_back({i, number_of[static_cast<std::size_t>(j)], matrix.value[k]});
+    }
+  }
+  return from_triplets(static_cast<Index>(keep.size()), entries);
+}
+
+/// A few units in the last place outwards, for the roundings of the band itself.
+double widened(double value, int direction) {
+  return value + direction * std::fabs(value) * 0x1p-50;
+}
+
+/// The one of two that says less; statements that need both fail when either does.
+Certificate weaker(const Certificate& one, const Certificate& other) {
+  if (one.level == Level::kProved) return other;
+  if (other.level == Level::kProved) return one;
+  Certificate both = one;
+  both.failure_probability = one.failure_probability.value_or(0) + other.failure_probability.value_or(0);
+  return both;
+}
+
+std::string at_eigenvalue(const ShiftCount& count, Index many) {
+  std::string text = "at shift " + number_text(count.shift) + " the count lies between " +
+                     std::to_string(count.below_range.first) + " and " + std::to_string(count.below_range.second);
+  if (count.holds_outside) {
+    const auto [low, high] = *count.holds_outside;
+    text += "; " + std::to_string(many) + (many == 1 ? " eigenvalue lies" : " eigenvalues lie") + " within " +
+            number_text(std::max(count.shift - low, high - count.shift)) + " of this shift";
+  } else {
+    text += ": an eigenvalue is too close to this shift to tell";
+  }
+  return text + ". Remedy: move the shift a little";
+}
+
+}  // namespace
+
+void PencilCounter::warn(const char* code, std::string message) {
+  outcome_.warnings.push_back({code, std::move(message), outcome_.inputs.front().path});
+}
+
+Status PencilCounter::prepare(ModelInput model) {
+  if (request_.pencil == Pencil::kMass) {
+    if (Status status = judge_mass(model); !status.ok()) return status;
+  }
+  const bool alone = request_.pencil == Pencil::kStiffness;
+  auto pencil = PreparedPencil::make(model, alone, request_, context_, pool_, outcome_);
+  if (!pencil.ok()) return pencil.status();
+  pencil_ = std::move(*pencil);
+  if (alone || (mass_diagonal_ && mass_semidefinite_)) pencil_->set_second_bound_from_diagonal();
+  return {};
+}
+
+Status PencilCounter::judge() {
+  if (request_.pencil == Pencil::kStiffness) {
+    kind_ = CountKind::kBelow;
+    return {};
+  }
+  if (request_.pencil == Pencil::kMass && !mass_judged_) {
+    if (Status status = certify_mass(); !status.ok()) return status;
+  }
+  if (request_.pencil == Pencil::kMass && (mass_semidefinite_ || massless_singular_)) {
+    kind_ = mass_semidefinite_ ? CountKind::kBelow : CountKind::kDirections;
+    return {};
+  }
+  return judge_stiffness();
+}
+
+void PencilCounter::accept_definite(const Certificate& why) {
+  kind_ = CountKind::kFromZero;
+  base_ = why;
+}
+
+/// M diagonal and non-negative is semidefinite for certain, and so is one that is definite on the dofs that have mass;
+/// where it is massless K must not be singular.
+Status PencilCounter::judge_mass(const ModelInput& model) {
+  const MassFacts facts = inspect_mass(*model.second);
+  mass_diagonal_ = facts.diagonal;
+  mass_semidefinite_ = mass_judged_ = facts.diagonal && facts.non_negative;
+  if (facts.massless.empty()) {
+    mass_judged_ = mass_judged_ || facts.diagonal;
+    return {};
+  }
+  if (!mass_judged_ && !facts.diagonal && facts.non_negative) {
+    ModelInput massive;
+    massive.stiffness = principal_submatrix(*model.second, others(facts.massless, model.second->rows));
+    auto found = certify_apart(std::move(massive));
+    if (!found.ok()) return found.status();
+    base_ = found->certificate;
+    mass_semidefinite_ = verdict_of(found->inertia, found->certificate.level) == Verdict::kPositiveDefinite;
+  }
+  mass_judged_ = true;
+  return mass_semidefinite_ ? judge_massless(model, facts.massless) : Status{};
+}
+
+Status PencilCounter::judge_massless(const ModelInput& model, const std::vector<Index>& massless) {
+  ModelInput part;
+  part.stiffness = principal_submatrix(model.stiffness, massless);
+  for (const SymmetricMatrix& added : model.added) part.added.push_back(principal_submatrix(added, massless));
+  auto found = certify_apart(std::move(part));
+  if (!found.ok()) return found.status();
+  if (found->certificate.level == Level::kNone || found->inertia.zero > 0) {
+    mass_semidefinite_ = false;
+    massless_singular_ = true;
+    warn("massless-and-weightless",
+         "K is singular (at the resolution) on the dofs without mass: K and M may have common null vectors, and "
+         "then no count of eigenvalues exists; the inertia of K - s M is reported instead");
+    return {};
+  }
+  base_ = base_.level == Level::kNone ? found->certificate : weaker(base_, found->certificate);
+  negative_on_massless_ = found->inertia.negative;
+  return {};
+}
+
+/// The inertia of a matrix of its own, on the document's risk.
+Result<CertifiedInertia> PencilCounter::certify_apart(ModelInput part) {
+  Outcome scratch = outcome_;  // the document's digests key the random vectors; its risk goes on
+  scratch.work.factorizations = 0;
+  scratch.warnings.clear();
+  Request plain = request_;
+  if (part.added.empty()) plain.input.added.clear();
+  auto pencil = PreparedPencil::make(part, false, plain, context_, pool_, scratch);
+  if (!pencil.ok()) return pencil.status();
+  auto found = pencil->certify(0, true, data_error(*pencil, 0), pool_, scratch);
+  if (!found.ok()) return found.status();
+  outcome_.work.factorizations += scratch.work.factorizations;
+  outcome_.risk = scratch.risk;
+  outcome_.events = std::move(scratch.events);
+  return found;
+}
+
+/// K certified definite makes counts of factors between 0 and f; anything else is said first.
+Status PencilCounter::judge_stiffness() {
+  auto definite = pencil_->certify(0, true, data_error(*pencil_, 0), pool_, outcome_);
+  if (!definite.ok()) return definite.status();
+  stiffness_ = *definite;
+  base_ = definite->certificate;
+  stiffness_bound_ = definite->certificate.smallest_eigenvalue_above.value_or(0);
+  if (verdict_of(definite->inertia, definite->certificate.level) == Verdict::kPositiveDefinite) {
+    kind_ = CountKind::kFromZero;
+    if (request_.pencil == Pencil::kMass) {
+      warn("mass-not-definite",
+           "M could not be certified positive semidefinite; K is definite, so counts are of the eigenvalues between 0 "
+           "and the shift, on either side of 0");
+    }
+    return {};
+  }
+  kind_ = CountKind::kDirections;
+  if (request_.pencil == Pencil::kMass) {
+    warn("mass-not-definite",
+         "M could not be certified positive definite, so the numbers are negative directions of K - s M, not counts of "
+         "eigenvalues below s");
+    return {};
+  }
+  warn("stiffness-not-definite",
+       "K itself is not positive definite (" + std::to_string(definite->inertia.negative) + " negative, " +
+           std::to_string(definite->inertia.zero) +
+           " zero directions), so no count of critical factors follows; the inertia of K + f G is reported instead. "
+           "Remedy: run `stanchion check` on K first");
+  return definite->inertia.zero > 0 ? look_for_common_null_vectors() : Status{};
+}
+
+/// Directions that are zero in K and in K + f G alike are zero in G, at the resolution: K + f G is then singular at every
+/// f.
+Status PencilCounter::look_for_common_null_vectors() {
+  const double size = pencil_->size_ratio();
+  if (!(size > 0) || !std::isfinite(size)) return {};
+  // Two unrelated factors: an eigenvalue of the pencil at both by chance is not to be expected.
+  Index common = stiffness_->inertia.zero;
+  for (const double part : {0.1234567, -0.0789123}) {
+    auto found = pencil_->certify(part * size, false, 0, pool_, outcome_);
+    if (!found.ok()) return found.status();
+    common = std::min(common, found->certificate.level == Level::kNone ? Index{0} : found->inertia.zero);
+  }
+  if (common == 0) return {};
+  warn("common-null-vectors",
+       std::to_string(common) + (common == 1 ? " direction is" : " directions are") +
+           " zero in K and in G alike (at the resolution): K + f G is singular at every f, so that no critical factor is "
+           "defined. Remedy: support the model, or strike these directions out with --fix");
+  return {};
+}
+
+/// M with off-diagonal entries: proved definite by a factorization of its own, or said to be unknown.
+Status PencilCounter::certify_mass() {
+  mass_judged_ = true;
+  auto found = pencil_->certify_second(pool_, outcome_);
+  if (!found.ok()) return found.status();
+  mass_semidefinite_ = verdict_of(found->inertia, found->certificate.level) == Verdict::kPositiveDefinite;
+  if (mass_semidefinite_) base_ = found->certificate;
+  return {};
+}
+
+/// What --digits lets the entries of K + factor * second be off by; 0 where they count as exact.
+double PencilCounter::data_error(const PreparedPencil& pencil, double factor) const {
+  return request_.digits ? pencil.digits_error(factor, *request_.digits) : 0;
+}
+
+std::string PencilCounter::meaning(double shift) const {
+  const bool factors = request_.pencil == Pencil::kGeometric;
+  switch (kind_) {
+    case CountKind::kFromZero:
+      if (factors) return shift < 0 ? "critical factors between the shift and 0" : "critical factors between 0 and the shift";
+      return shift < 0 ? "eigenvalues of K x = s M x between the shift and 0"
+                       : "eigenvalues of K x = s M x between 0 and the shift";
+    case CountKind::kBelow:
+      return request_.pencil == Pencil::kStiffness ? "eigenvalues of K strictly below the shift, in the mixed units of K"
+                                                   : "eigenvalues of K x = s M x strictly below the shift";
+    case CountKind::kDirections:
+      break;
+  }
+  return factors ? "negative directions of K + f G at the shift" : "negative directions of K - s M at the shift";
+}
+
+double PencilCounter::factor_of(double shift) const {
+  if (request_.pencil == Pencil::kGeometric) return request_.input.load_sign_minus ? -shift : shift;
+  return -shift;
+}
+
+Result<ShiftCount> PencilCounter::count(double shift) {
+  const double factor = factor_of(shift);
+  auto found =
+      pencil_->certify(factor, request_.pencil == Pencil::kGeometric, data_error(*pencil_, factor), pool_, outcome_);
+  if (!found.ok()) return found.status();
+  return count_from(shift, *found, outcome_.warnings);
+}
+
+Result<ShiftCount> PencilCounter::count_apart(double shift, Index number, int share, ThreadPool& pool,
+                                              Outcome& scratch) const {
+  const double factor = factor_of(shift);
+  auto found = pencil_->certify_apart(factor, request_.pencil == Pencil::kGeometric, data_error(*pencil_, factor), number,
+                                      share, pool, scratch);
+  if (!found.ok()) return found.status();
+  return count_from(shift, *found, scratch.warnings);
+}
+
+void PencilCounter::merge(const Outcome& scratch) {
+  pencil_->merge(scratch, outcome_);
+}
+
+ShiftCount PencilCounter::count_from(double shift, const CertifiedInertia& found, Warnings& warnings) const {
+  ShiftCount count;
+  count.shift = shift;
+  count.meaning = meaning(shift);
+  count.certificate = found.certificate;
+  count.method = found.certificate.method;
+  const Inertia& inertia = found.inertia;
+  const std::string& place = outcome_.inputs.front().path;
+  if (found.certificate.level == Level::kNone) {
+    count.below_range = {0, outcome_.rows_analysed};
+    warnings.push_back({"unresolved", "at shift " + number_text(shift) + ": " + found.unresolved_because, place});
+    return count;
+  }
+  const Index least = std::max<Index>(0, inertia.negative - negative_on_massless_);
+  count.below_range = {least, least + inertia.zero};
+  if (inertia.zero == 0) {
+    count.below = least;
+    rest_on(count, found.certificate);
+    if (found.exclusion_radius > 0) count.no_eigenvalue_within = found.exclusion_radius;
+  } else {
+    count.holds_outside = band(shift, found.certificate);
+    warnings.push_back({"shift-at-eigenvalue", at_eigenvalue(count, inertia.zero), place});
+  }
+  return count;
+}
+
+/// A count stands on its own certificate and on those of K or M that give it its meaning: the weakest counts, and the
+/// failure probabilities add up.
+void PencilCounter::rest_on(ShiftCount& count, const Certificate& own) const {
+  count.level = own.level;
+  double failure = own.level == Level::kStatistical ? own.failure_probability.value_or(0) : 0;
+  if (base_.level == Level::kStatistical) {
+    count.level = Level::kStatistical;
+    failure += base_.failure_probability.value_or(0);
+  }
+  if (count.level == Level::kStatistical) count.failure_probability = failure;
+}
+
+/// The interval around `shift` that must hold the eigenvalues between the two counts: A_s moves by at least mu a
+/// unit of shift (or kappa a unit of relative factor), and they lie within c + eta of zero.
+std::optional<std::pair<double, double>> PencilCounter::band(double shift, const Certificate& certificate) const {
+  if (!certificate.resolution || !certificate.error_bound) return std::nullopt;
+  const double reach = (*certificate.resolution + *certificate.error_bound) * (1 + 0x1p-50);
+  if (kind_ == CountKind::kFromZero) {
+    const double relative = reach / stiffness_bound_ * (1 + 0x1p-50);
+    if (!(relative < 1)) return std::nullopt;
+    const double inner = shift / (1 + relative), outer = shift / (1 - relative);
+    return std::pair{widened(std::min(inner, outer), -1), widened(std::max(inner, outer), 1)};
+  }
+  if (kind_ == CountKind::kDirections || !(pencil_->second_matrix_bound() > 0)) return std::nullopt;
+  const double width = reach / pencil_->second_matrix_bound() * (1 + 0x1p-50);
+  return std::pair{widened(shift - width, -1), widened(shift + width, 1)};
+}
+
+std::optional<CountFact> PencilCounter::fact(const ShiftCount& count) const {
+  if (kind_ == CountKind::kDirections || count.certificate.level == Level::kNone) return std::nullopt;
+  CountFact fact{count.shift, count.below_range.first, count.below_range.second, count.holds_outside,
+                 Level::kProved, 0};
+  if (kind_ == CountKind::kFromZero && count.shift < 0) {
+    fact.least = -count.below_range.second;
+    fact.most = -count.below_range.first;
+  }
+  if (base_.level == Level::kStatistical || count.certificate.level == Level::kStatistical) {
+    fact.level = Level::kStatistical;
+    fact.failure_probability = count.certificate.failure_probability.value_or(0) + base_.failure_probability.value_or(0);
+  }
+  return fact;
+}
+
+}  // namespace stanchion

@@ -1,0 +1,93 @@
+// Certified counts of a pencil at any shift, with what K and M must be for a count to be one of values.
+#pragma once
+
+#include <optional>
+#include <string>
+#include <utility>
+
+#include "engine/prepared_pencil.hpp"
+#include "spectrum/staircase.hpp"
+
+namespace stanchion {
+
+/// What the numbers of a pencil count.
+enum class CountKind {
+  kBelow,      ///< values strictly below the shift
+  kFromZero,   ///< values between 0 and the shift, on either side: K is certified definite
+  kDirections  ///< negative directions of the matrix at the shift, nothing else
+};
+
+/// A pencil read, analysed and judged. Refers to the request, the context, the pool and the outcome it is given, where
+/// it books time, work, risk and warnings; one document, one counter.
+class PencilCounter {
+ public:
+  PencilCounter(const Request& request, const RunContext& context, ThreadPool& pool, Outcome& outcome)
+      : request_(request), context_(context), pool_(pool), outcome_(outcome) {}
+
+  /// Analyses the pencil and looks at M. Errors: those of reading, analysing and factoring.
+  Status prepare(ModelInput model);
+
+  /// Settles what counts mean: K certified definite, or M semidefinite, or neither, with a warning. Call after
+  /// prepare(); the safety question calls it only when it has to.
+  Status judge();
+
+  /// Taken as judged: K is definite by `why` (both ends of a line definite, say).
+  void accept_definite(const Certificate& why);
+
+  CountKind kind() const { return kind_; }
+
+  /// The count at one shift, charged to the document's risk.
+  Result<ShiftCount> count(double shift);
+
+  /// The same with a risk of its own, as event `number` of the document (from 1, each used once); everything is booked
+  /// in `scratch`. For shifts side by side, each with a pool of its own; `share` of the memory each.
+  Result<ShiftCount> count_apart(double shift, Index number, int share, ThreadPool& pool, Outcome& scratch) const;
+
+  /// Takes what `scratch` has booked into the document.
+  void merge(const Outcome& scratch);
+
+  /// A count as a fact about the number of values; kDirections: nothing. Value number k lies where the number grows from
+  /// k - 1 to k; those below 0 have numbers from 0 downwards when the kind is kFromZero.
+  std::optional<CountFact> fact(const ShiftCount& count) const;
+
+  PreparedPencil& pencil() { return *pencil_; }
+  const PreparedPencil& pencil() const { return *pencil_; }
+
+  /// The coefficient of the second matrix at a shift: f, -f or -s.
+  double factor_of(double shift) const;
+  bool two_sided() const { return kind_ == CountKind::kFromZero; }
+  /// Of K when judged definite, of M or of K on the massless dofs: what every count also rests on.
+  const Certificate& base() const { return base_; }
+  /// K's own inertia, when judge() looked at it.
+  const std::optional<CertifiedInertia>& stiffness() const { return stiffness_; }
+  bool mass_semidefinite() const { return mass_semidefinite_; }
+
+  void warn(const char* code, std::string message);
+
+ private:
+  Status judge_mass(const ModelInput& model);
+  Status judge_massless(const ModelInput& model, const std::vector<Index>& massless);
+  Result<CertifiedInertia> certify_apart(ModelInput part);
+  Status look_for_common_null_vectors();
+  Status judge_stiffness();
+  Status certify_mass();
+  double data_error(const PreparedPencil& pencil, double factor) const;
+  std::string meaning(double shift) const;
+  ShiftCount count_from(double shift, const CertifiedInertia& found, Warnings& warnings) const;
+  void rest_on(ShiftCount& count, const Certificate& own) const;
+  std::optional<std::pair<double, double>> band(double shift, const Certificate& certificate) const;
+
+  const Request& request_;
+  const RunContext& context_;
+  ThreadPool& pool_;
+  Outcome& outcome_;
+  std::optional<PreparedPencil> pencil_;
+  CountKind kind_ = CountKind::kDirections;
+  bool mass_semidefinite_ = false, mass_diagonal_ = false, massless_singular_ = false, mass_judged_ = false;
+  double stiffness_bound_ = 0;  ///< S K S is at least this, when certified definite
+  Index negative_on_massless_ = 0;
+  Certificate base_;
+  std::optional<CertifiedInertia> stiffness_;
+};
+
+}  // namespace stanchion
