@@ -17,9 +17,19 @@ namespace {
 
 using test::Random;
 
+/// A whole number from the environment.
+int asked(const char* name, int otherwise) {
+  const char* value = std::getenv(name);
+  return value != nullptr ? std::atoi(value) : otherwise;
+}
+
 int cases() {
-  const char* asked = std::getenv("STANCHION_CASES");
-  return asked != nullptr ? std::atoi(asked) : 2000;
+  return asked("STANCHION_CASES", 2000);
+}
+
+/// Other cases for every STANCHION_CASES_FROM: a long run may be made piece by piece.
+Random cases_of(std::uint64_t test) {
+  return Random(test + 1000003ULL * static_cast<std::uint64_t>(asked("STANCHION_CASES_FROM", 0)));
 }
 
 /// A random dyadic symmetric matrix, often singular or nearly so, on purpose: small integers, rank-deficient sums,
@@ -102,7 +112,7 @@ bool right(const CertifiedInertia& found, const test::ExactInertia& truth) {
 }
 
 TEST(CertificateProperty, NoWrongStatementAtLevelProved) {
-  Random random(20261201);
+  Random random = cases_of(20261201);
   int wrong = 0, unsettled = 0, clear = 0;
   for (int number = 0; number < cases(); ++number) {
     const SymmetricMatrix matrix = trouble(random, number);
@@ -130,7 +140,7 @@ TEST(CertificateProperty, NoWrongStatementAtLevelProved) {
 
 TEST(CertificateProperty, StatisticalStatementsAreWrongNoMoreOftenThanTheirRisk) {
   // At risk 0.01 a document, wrong statements among N may exceed N * 0.01 by no more than five standard deviations.
-  Random random(7);
+  Random random = cases_of(7);
   int wrong = 0, certified = 0, nonsingular = 0;
   for (int number = 0; number < cases(); ++number) {
     const SymmetricMatrix matrix = trouble(random, number);
@@ -155,7 +165,7 @@ TEST(CertificateProperty, StatisticalStatementsAreWrongNoMoreOftenThanTheirRisk)
 }
 
 TEST(CertificateProperty, NoWrongStatementAtTheDefaultRisk) {
-  Random random(8);
+  Random random = cases_of(8);
   std::map<int, std::pair<int, int>> by_condition;  // power of ten -> nonsingular cases, left open
   for (int number = 0; number < cases(); ++number) {
     const SymmetricMatrix matrix = trouble(random, number);

@@ -1,5 +1,5 @@
-# The general-purpose solvers that serve as oracles and as the other side of benchmarks. Each is optional: the library
-# targets peer_cholmod_solver and peer_mumps_solver exist where the solver was found.
+# The general-purpose libraries that serve as oracles and as the other side of benchmarks. Each is optional: the library
+# targets peer_cholmod_solver, peer_mumps_solver and oracle_balls exist where the library was found.
 include_guard(GLOBAL)
 
 find_path(CHOLMOD_INCLUDE_DIR cholmod.h PATH_SUFFIXES suitesparse)
@@ -7,6 +7,9 @@ find_library(CHOLMOD_LIBRARY cholmod)
 find_path(MUMPS_INCLUDE_DIR dmumps_c.h)
 find_library(MUMPS_LIBRARY dmumps_seq)
 find_library(MUMPS_MPI_LIBRARY mpiseq_seq)
+find_path(ARB_INCLUDE_DIR arb.h PATH_SUFFIXES flint flint-arb)
+find_library(ARB_LIBRARY NAMES flint-arb arb)
+find_library(FLINT_LIBRARY flint)
 
 if(CHOLMOD_INCLUDE_DIR AND CHOLMOD_LIBRARY)
   add_library(peer_cholmod_solver STATIC ${CMAKE_CURRENT_LIST_DIR}/cholmod_solver.cpp)
@@ -24,4 +27,13 @@ if(MUMPS_INCLUDE_DIR AND MUMPS_LIBRARY AND MUMPS_MPI_LIBRARY)
   target_link_libraries(peer_mumps_solver PUBLIC stanchion ${MUMPS_LIBRARY} ${MUMPS_MPI_LIBRARY})
 else()
   message(STATUS "sequential MUMPS not found (libmumps-seq-dev): its oracle tests and benchmark are left out")
+endif()
+
+if(ARB_INCLUDE_DIR AND ARB_LIBRARY AND FLINT_LIBRARY)
+  add_library(oracle_balls STATIC ${CMAKE_CURRENT_LIST_DIR}/ball_inertia.cpp)
+  target_include_directories(oracle_balls SYSTEM PRIVATE ${ARB_INCLUDE_DIR})
+  target_include_directories(oracle_balls PUBLIC ${PROJECT_SOURCE_DIR}/tests)
+  target_link_libraries(oracle_balls PUBLIC stanchion ${ARB_LIBRARY} ${FLINT_LIBRARY})
+else()
+  message(STATUS "Arb not found (libflint-arb-dev): the tests against ball arithmetic are left out")
 endif()
