@@ -60,6 +60,12 @@ struct Witness {
   std::optional<std::string> path = std::nullopt;  ///< the file it was written to
 };
 
+/// How one statement is backed, on its own.
+struct Backing {
+  Level level = Level::kNone;
+  std::optional<double> failure_probability;  ///< when statistical
+};
+
 /// The structure on its constraints (saddle point matrices); absent members: only the range is known.
 struct ConstrainedOutcome {
   Index multipliers = 0;
@@ -67,6 +73,8 @@ struct ConstrainedOutcome {
   std::optional<Index> redundant;
   std::optional<Inertia> inertia;
   std::optional<std::pair<Index, Index>> negative_range;
+  Backing rank_backing;     ///< of `rank` and `redundant`
+  Backing inertia_backing;  ///< of `inertia` or `negative_range`: the weakest of what they follow from
   std::vector<Index> redundant_equations;  ///< multipliers, from 1 as in the files, whose constraint repeats another
 };
 

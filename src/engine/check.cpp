@@ -49,7 +49,7 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
   explain_unresolved(*certified, outcome);
   if (check.inertia.zero > 0 || check.verdict == Verdict::kUnresolved) offer_last_resort(*pencil, request, outcome);
   if (!multipliers.empty()) {
-    check.constrained = judge_on_constraints(check.inertia, check.certificate.level, rank, original);
+    check.constrained = judge_on_constraints(check.inertia, check.certificate, rank, original);
     if (!rank.bordered) {
       outcome.warnings.push_back({"multipliers-coupled",
                                   "multipliers act on each other (entries between their rows), so the structure on its "

@@ -37,15 +37,17 @@ ConstraintRows extract_rows(const SymmetricMatrix& matrix, const std::vector<Ind
   return found;
 }
 
-/// True when `b` is exactly a multiple of `a` by a power of two or minus one: a ratio that doubles hold without error.
+/// Products above this have no error below the smallest double: fma tells whether they are exact.
+constexpr double kNoUnderflow = 0x1p-900;
+
+/// True when `b` is `a` times a number that a double holds, in every entry without error. Rows with tiny
+/// entries do not count: their products may lose what no double can show.
 bool exact_multiple(const ConstraintRow& a, const ConstraintRow& b) {
   if (a.size() != b.size()) return false;
   const double ratio = b.front().second / a.front().second;
   for (std::size_t k = 0; k < a.size(); ++k) {
-    // ratio * a is exact when it rounds to b and dividing back gives a: both directions must reproduce.
-    if (a[k].first != b[k].first || a[k].second * ratio != b[k].second || std::fma(a[k].second, ratio, -b[k].second) != 0) {
-      return false;
-    }
+    if (a[k].first != b[k].first || !(std::fabs(b[k].second) > kNoUnderflow)) return false;
+    if (std::fma(a[k].second, ratio, -b[k].second) != 0) return false;
   }
   return true;
 }
@@ -89,6 +91,28 @@ SymmetricMatrix bordered_identity(const std::vector<ConstraintRow>& rows, const 
   return from_triplets(next, entries);
 }
 
+Backing backing_of(const Certificate& certificate) {
+  if (certificate.level != Level::kStatistical) return {certificate.level, {}};
+  return {certificate.level, certificate.failure_probability};
+}
+
+/// What rests on two statements: the weaker level, and either may fail.
+Backing both(const Backing& one, const Backing& other) {
+  Backing result{std::min(one.level, other.level), {}};
+  if (result.level == Level::kStatistical) {
+    result.failure_probability = one.failure_probability.value_or(0) + other.failure_probability.value_or(0);
+  }
+  return result;
+}
+
+/// At least so many of either sign; what is left is zero at the resolution. Fewer than p of A's certain signs
+/// (soft constraints below the resolution) leave nothing certain, not less than nothing.
+Inertia on_constraints(const Inertia& a, Index q, Index p) {
+  const Index rows = a.negative + a.zero + a.positive - q - p;
+  const Index negative = std::max<Index>(0, a.negative - p), positive = std::max<Index>(0, a.positive - p);
+  return {negative, rows - negative - positive, positive, 0};
+}
+
 }  // namespace
 
 Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness, const std::vector<Index>& multipliers,
@@ -104,6 +128,7 @@ Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness,
     if (repeated[m]) rank.repeated.push_back(multipliers[m]);
   }
   const Index distinct = rank.multipliers - static_cast<Index>(rank.repeated.size());
+  rank.backing.level = Level::kProved;
   if (distinct == 0) return rank;
   ModelInput bordered;
   bordered.stiffness = bordered_identity(constraints.rows, repeated);
@@ -121,32 +146,41 @@ Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness,
     rank.most = distinct;
     return rank;
   }
+  rank.backing = backing_of(found->certificate);
   // n-([I B^T; B 0]) = rank(B): every zero direction may be one more.
   rank.least = found->inertia.negative;
   rank.most = std::min(distinct, found->inertia.negative + found->inertia.zero);
   return rank;
 }
 
-ConstrainedOutcome judge_on_constraints(const Inertia& inertia, Level level, const ConstraintRank& rank,
-                                        const std::vector<Index>& original) {
+ConstrainedOutcome judge_on_constraints(const Inertia& inertia, const Certificate& certificate,
+                                        const ConstraintRank& rank, const std::vector<Index>& original) {
   ConstrainedOutcome outcome;
   outcome.multipliers = rank.multipliers;
   for (const Index equation : rank.repeated) {
     outcome.redundant_equations.push_back((original.empty() ? equation : original[static_cast<std::size_t>(equation)]) + 1);
   }
-  if (level == Level::kNone || !rank.bordered) return outcome;
+  if (!rank.bordered) return outcome;
   const Index q = rank.multipliers;
+  const Backing of_a = backing_of(certificate);
+  const bool rank_known = rank.backing.level != Level::kNone && rank.least == rank.most;
   // A without zero directions has independent constraints, whatever B's own certificate could say.
-  const bool independent = inertia.zero == 0;
-  const Index least = independent ? q : rank.least, most = independent ? q : rank.most;
-  if (least == most) {
-    outcome.rank = least;
-    outcome.redundant = q - least;
-    outcome.inertia = Inertia{inertia.negative - least, inertia.zero - (q - least), inertia.positive - least, 0};
+  const bool independent = of_a.level != Level::kNone && inertia.zero == 0;
+  if (rank_known || independent) {
+    const bool from_a = independent && (!rank_known || of_a.level > rank.backing.level);
+    outcome.rank = from_a ? q : rank.least;
+    outcome.redundant = q - *outcome.rank;
+    outcome.rank_backing = from_a ? of_a : rank.backing;
+  }
+  if (of_a.level == Level::kNone) return outcome;
+  if (!outcome.rank) {
+    outcome.negative_range = {std::max<Index>(0, inertia.negative - q),
+                              std::max<Index>(0, inertia.negative - q + inertia.zero)};
+    outcome.inertia_backing = of_a;
     return outcome;
   }
-  outcome.negative_range = {std::max<Index>(0, inertia.negative - q),
-                            std::max<Index>(0, inertia.negative - q + inertia.zero)};
+  outcome.inertia = on_constraints(inertia, q, *outcome.rank);
+  outcome.inertia_backing = independent ? of_a : both(of_a, outcome.rank_backing);
   return outcome;
 }
 

@@ -11,6 +11,7 @@ namespace stanchion {
 struct ConstraintRank {
   Index multipliers = 0;          ///< q
   Index least = 0, most = 0;      ///< the rank lies between; equal when known
+  Backing backing;                ///< of that statement
   std::vector<Index> repeated;    ///< equations of multipliers whose row of B is an exact multiple of an earlier one
   bool bordered = true;           ///< false: multipliers act on each other, the theory below does not apply
 };
@@ -21,9 +22,10 @@ Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness,
                                                const Request& request, const RunContext& context, ThreadPool& pool,
                                                Outcome& outcome);
 
-/// In(A) = In(Z^T K Z) + (p, p, q - p), p = rank(B), Z a basis of null(B) (Gould, Math. Program. 32 (1985); Haynsworth,
-/// Linear Algebra Appl. 1 (1968)). With p known only as a range, so is the answer. `original`: see ModelInput.
-ConstrainedOutcome judge_on_constraints(const Inertia& inertia, Level level, const ConstraintRank& rank,
-                                        const std::vector<Index>& original);
+/// In(A) = In(Z^T K Z) + (p, p, q - p), p = rank(B), Z a basis of null(B) (Gould, Math. Program. 32 (1985);
+/// Haynsworth, Linear Algebra Appl. 1 (1968)). With p known only as a range, so is the answer. `original`:
+/// see ModelInput. `certificate`: of `inertia`, which is that of A.
+ConstrainedOutcome judge_on_constraints(const Inertia& inertia, const Certificate& certificate,
+                                        const ConstraintRank& rank, const std::vector<Index>& original);
 
 }  // namespace stanchion

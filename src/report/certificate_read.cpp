@@ -94,6 +94,13 @@ Certificate certificate_of(const Member& member) {
   return certificate;
 }
 
+/// Certificates written before these keys existed have none.
+Backing backing_of(const Member& member, const std::string& what) {
+  if (!member.has(what + "_level")) return {};
+  return {level_of(member.at(what + "_level")),
+          unless_null(member.at(what + "_failure_probability"), probability_of)};
+}
+
 ConstrainedOutcome constrained_of(const Member& member) {
   ConstrainedOutcome constrained;
   constrained.multipliers = member.at("multipliers").index();
@@ -102,6 +109,8 @@ ConstrainedOutcome constrained_of(const Member& member) {
   constrained.inertia = unless_null(member.at("inertia"), inertia_of);
   constrained.negative_range = unless_null(
       member.at("negative_range"), [](const Member& range) { return pair_of<Index>(range, index_of); });
+  constrained.rank_backing = backing_of(member, "rank");
+  constrained.inertia_backing = backing_of(member, "inertia");
   return constrained;
 }
 

@@ -32,6 +32,8 @@ class Member {
     return {value_[key], way};
   }
 
+  bool has(const std::string& key) const { return value_.is_object() && value_.contains(key); }
+
   std::vector<Member> items() const {
     if (!value_.is_array()) wrong("no list");
     std::vector<Member> list;

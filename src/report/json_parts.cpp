@@ -55,6 +55,10 @@ Json json_of(const ConstrainedOutcome& constrained) {
           {"redundant", json_of(constrained.redundant)},
           {"inertia", json_of(constrained.inertia)},
           {"negative_range", json_of(constrained.negative_range)},
+          {"rank_level", name_of(constrained.rank_backing.level)},
+          {"rank_failure_probability", json_of(constrained.rank_backing.failure_probability)},
+          {"inertia_level", name_of(constrained.inertia_backing.level)},
+          {"inertia_failure_probability", json_of(constrained.inertia_backing.failure_probability)},
           {"redundant_equations", json_of(constrained.redundant_equations)}};
 }
 

@@ -178,12 +178,17 @@ std::string first_of(const std::vector<Index>& equations) {
   return text;
 }
 
+std::string backing_in_words(const Backing& backing) {
+  return stanchion::backing_in_words(backing.level, backing.failure_probability);
+}
+
 void write_constrained(Page& page, const ConstrainedOutcome& constrained) {
   page.title("The structure on its constraints");
   std::string multipliers = counted(constrained.multipliers, "multiplier");
   if (constrained.rank) multipliers += fmt::format(", {} independent", grouped(*constrained.rank));
   if (constrained.redundant) multipliers += fmt::format(", {} redundant", grouped(*constrained.redundant));
   page.row("constraints", multipliers);
+  if (constrained.rank) page.row("rank by", backing_in_words(constrained.rank_backing));
   if (!constrained.redundant_equations.empty()) {
     page.row("redundant", "the multipliers of equations " + first_of(constrained.redundant_equations));
   }
@@ -192,6 +197,9 @@ void write_constrained(Page& page, const ConstrainedOutcome& constrained) {
     page.row("negative", fmt::format("between {} and {}: the rank of the constraints is not certified",
                                      grouped(constrained.negative_range->first),
                                      grouped(constrained.negative_range->second)));
+  }
+  if (constrained.inertia || constrained.negative_range) {
+    page.row("backed by", backing_in_words(constrained.inertia_backing));
   }
 }
 

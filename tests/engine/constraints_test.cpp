@@ -1,3 +1,5 @@
+#include "engine/constraints.hpp"
+
 #include "engine/model_files.hpp"
 #include "support/generators.hpp"
 
@@ -28,6 +30,57 @@ TEST(Constraints, RepeatedConstraintCountsByRankNotByNumber) {
   EXPECT_EQ(on.inertia->negative, 1);
   EXPECT_EQ(on.inertia->zero, 0);
   EXPECT_EQ(on.inertia->positive, 0);
+  EXPECT_EQ(on.rank_backing.level, Level::kProved);
+  EXPECT_EQ(on.inertia_backing.level, Level::kProved);
+}
+
+TEST(Constraints, RankAndInertiaAreBackedEachOnItsOwn) {
+  Certificate proved, statistical;
+  proved.level = Level::kProved;
+  statistical.level = Level::kStatistical;
+  statistical.failure_probability = 3e-7;
+  ConstraintRank rank{2, 1, 1, {Level::kStatistical, 5e-7}, {}};
+  // The rank by statistics, A by proof: what follows is statistical. One zero direction is the redundant
+  // constraint.
+  const ConstrainedOutcome weaker = judge_on_constraints({1, 1, 6, 0}, proved, rank, {});
+  EXPECT_EQ(weaker.rank_backing.level, Level::kStatistical);
+  EXPECT_EQ(weaker.inertia_backing.level, Level::kStatistical);
+  EXPECT_EQ(weaker.inertia_backing.failure_probability, 5e-7);
+  const ConstrainedOutcome both = judge_on_constraints({1, 1, 6, 0}, statistical, rank, {});
+  EXPECT_EQ(both.inertia_backing.failure_probability, 3e-7 + 5e-7);
+  // A without zero directions shows the rank itself, at its own level.
+  rank.least = 0, rank.most = 2;
+  const ConstrainedOutcome from_a = judge_on_constraints({2, 0, 6, 0}, statistical, rank, {});
+  EXPECT_EQ(from_a.rank, 2);
+  EXPECT_EQ(from_a.rank_backing.failure_probability, 3e-7);
+  EXPECT_EQ(from_a.inertia_backing.failure_probability, 3e-7);
+  // Nothing known of the rank: a range, which rests on A alone.
+  const ConstrainedOutcome range = judge_on_constraints({2, 1, 5, 0}, proved, rank, {});
+  EXPECT_FALSE(range.rank);
+  EXPECT_EQ(range.rank_backing.level, Level::kNone);
+  EXPECT_EQ(range.inertia_backing.level, Level::kProved);
+  // A not certified: the rank may still be known.
+  rank.least = rank.most = 1;
+  EXPECT_EQ(judge_on_constraints({0, 0, 0, 8}, {}, rank, {}).rank, 1);
+}
+
+TEST(Constraints, ConstraintsBelowTheResolutionLeaveZerosNotLessThanNothing) {
+  // A decides two positive directions of five, and none negative; one constraint takes one of either sign.
+  Certificate proved;
+  proved.level = Level::kProved;
+  const ConstraintRank rank{1, 1, 1, {Level::kProved, {}}, {}};
+  const Inertia on = *judge_on_constraints({0, 3, 2, 0}, proved, rank, {}).inertia;
+  EXPECT_EQ(on.negative, 0);
+  EXPECT_EQ(on.zero, 2);
+  EXPECT_EQ(on.positive, 1);
+}
+
+TEST(Constraints, TinyRowsAreNotTakenForMultiples) {
+  // Row 2 is a third of row 1 but for less than the smallest double: no fma can show the difference.
+  const double tiny = 0x3p-1070;
+  const Outcome outcome = check_with_multipliers(
+      from_triplets(4, {{0, 0, 1}, {1, 1, 1}, {2, 0, 3}, {2, 1, tiny}, {3, 0, 1}, {3, 1, 0x1p-1070}}), 2);
+  EXPECT_TRUE(outcome.check->constrained->redundant_equations.empty());
 }
 
 TEST(Constraints, IndependentOnesNeedNoMore) {

@@ -54,7 +54,13 @@ TEST(CertificateJson, WhatIsClaimedReadsBack) {
       EXPECT_EQ(back.check->inertia.zero, outcome.check->inertia.zero);
       EXPECT_EQ(back.check->certificate.runs.size(), outcome.check->certificate.runs.size());
       EXPECT_EQ(back.check->certificate.error_bound, outcome.check->certificate.error_bound);
-      EXPECT_EQ(back.check->constrained.has_value(), outcome.check->constrained.has_value());
+      ASSERT_EQ(back.check->constrained.has_value(), outcome.check->constrained.has_value());
+      if (back.check->constrained) {
+        EXPECT_EQ(back.check->constrained->rank_backing.level,
+                  outcome.check->constrained->rank_backing.level);
+        EXPECT_EQ(back.check->constrained->inertia_backing.failure_probability,
+                  outcome.check->constrained->inertia_backing.failure_probability);
+      }
     }
     if (back.count) {
       EXPECT_EQ(back.count->counts.size(), outcome.count->counts.size());

@@ -61,6 +61,11 @@ TEST(Json, ConstraintsWithAndWithoutRank) {
   EXPECT_TRUE(range["rank"].is_null());
   EXPECT_TRUE(range["inertia"].is_null());
   EXPECT_EQ(range["negative_range"], Json::parse("[0,1]"));
+  EXPECT_EQ(known["rank_level"], "statistical");
+  EXPECT_EQ(known["rank_failure_probability"], 6e-7);
+  EXPECT_EQ(range["rank_level"], "none");
+  EXPECT_EQ(range["inertia_level"], "proved");
+  EXPECT_TRUE(range["inertia_failure_probability"].is_null());
 }
 
 TEST(Json, AWitnessIsGivenWhole) {

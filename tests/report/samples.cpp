@@ -103,6 +103,8 @@ Outcome constrained() {
   constrained.redundant = 1;
   constrained.inertia = Inertia{0, 0, 29715, 0};
   constrained.redundant_equations = {29790};
+  constrained.rank_backing = {Level::kStatistical, 6e-7};
+  constrained.inertia_backing = {Level::kStatistical, 6e-7};
   return outcome;
 }
 
@@ -111,6 +113,7 @@ Outcome constrained_range() {
   ConstrainedOutcome& constrained = outcome.check->constrained.emplace();
   constrained.multipliers = 41;
   constrained.negative_range = {0, 1};
+  constrained.inertia_backing = {Level::kProved, {}};
   return outcome;
 }
 

@@ -132,6 +132,9 @@ TEST(Text, ConstraintsAreToldApart) {
             "On its constraints the structure has between 0 and 1 negative directions.");
   EXPECT_TRUE(says(samples::constrained(), "41 multipliers, 40 independent, 1 redundant"));
   EXPECT_TRUE(says(samples::constrained(), "redundant     the multipliers of equations 29790\n"));
+  EXPECT_TRUE(
+      says(samples::constrained(), "rank by       statistics (wrong with probability at most 6e-07)"));
+  EXPECT_TRUE(says(samples::constrained_range(), "backed by     proof\n"));
   EXPECT_TRUE(says(samples::indefinite(), "x^T K x = -0.00035, 1e-12 at most off"));
   EXPECT_TRUE(says(samples::constrained(), "0 negative, 0 zero, 29,715 positive"));
   EXPECT_TRUE(
