@@ -109,7 +109,7 @@ Status PencilCounter::prepare(ModelInput model) {
   auto pencil = PreparedPencil::make(model, alone, request_, context_, pool_, outcome_);
   if (!pencil.ok()) return pencil.status();
   pencil_ = std::move(*pencil);
-  if (alone || (mass_diagonal_ && mass_semidefinite_)) pencil_->set_second_bound_from_diagonal();
+  if (alone || (mass_diagonal_ && mass_semidefinite_)) pencil_->set_second_bound_from_diagonal(alone ? std::nullopt : request_.digits);
   return {};
 }
 
@@ -245,7 +245,7 @@ Status PencilCounter::look_for_common_null_vectors() {
 /// M with off-diagonal entries: proved definite by a factorization of its own, or said to be unknown.
 Status PencilCounter::certify_mass() {
   mass_judged_ = true;
-  auto found = pencil_->certify_second(pool_, outcome_);
+  auto found = pencil_->certify_second(request_.digits, pool_, outcome_);
   if (!found.ok()) return found.status();
   mass_semidefinite_ = verdict_of(found->inertia, found->certificate.level) == Verdict::kPositiveDefinite;
   if (mass_semidefinite_) base_ = found->certificate;

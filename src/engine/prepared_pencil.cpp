@@ -53,6 +53,11 @@ std::uint64_t mixed_seed(std::uint64_t seed, const std::vector<InputRecord>& inp
   return seed;
 }
 
+/// Half a unit of decimal digit `digits` of any number over its size, rounded up.
+double half_unit_of(int digits) {
+  return 0.5 * std::pow(10.0, 1 - digits) * 1.001;
+}
+
 /// A job of some seconds: the arithmetic is tried before it, for some tens of milliseconds.
 constexpr double kLongJobFlops = 5e10;
 
@@ -251,7 +256,8 @@ Result<CertifiedInertia> PreparedPencil::certify(double factor, bool definite_fi
   return run(combination(factor), options, pool, outcome);
 }
 
-Result<CertifiedInertia> PreparedPencil::certify_second(ThreadPool& pool, Outcome& outcome) {
+Result<CertifiedInertia> PreparedPencil::certify_second(std::optional<int> digits, ThreadPool& pool,
+                                                        Outcome& outcome) {
   ShiftedMatrix matrix = second_alone();
   auto scale = power_of_two_scaling(family_, matrix.coefficients);
   if (!scale.ok()) return scale.status();
@@ -259,6 +265,7 @@ Result<CertifiedInertia> PreparedPencil::certify_second(ThreadPool& pool, Outcom
   OffsetOptions options;
   options.definite_first = true;
   options.factor = factor_options_;
+  if (digits) options.data_error = digits_error(matrix, *digits);
   auto found = run(matrix, options, pool, outcome);
   if (!found.ok() || !found->certificate.smallest_eigenvalue_above) return found;
   // S M S = (S S'^-1) (S' M S') (S'^-1 S) >= min (s_i / s'_i)^2 mu' I; the ratios are powers of two.
@@ -268,7 +275,7 @@ Result<CertifiedInertia> PreparedPencil::certify_second(ThreadPool& pool, Outcom
   return found;
 }
 
-void PreparedPencil::set_second_bound_from_diagonal() {
+void PreparedPencil::set_second_bound_from_diagonal(std::optional<int> digits) {
   const Buffer<double>& second = family_.values.back();
   second_bound_ = INFINITY;
   for (Index j = 0; j < family_.rows; ++j) {
@@ -276,6 +283,7 @@ void PreparedPencil::set_second_bound_from_diagonal() {
       if (family_.row[k] == j) second_bound_ = std::min(second_bound_, second[k] * scale_[j] * scale_[j]);
     }
   }
+  if (digits) second_bound_ *= 1 - half_unit_of(*digits);
 }
 
 Result<std::optional<Witness>> PreparedPencil::find_witness(const std::vector<Index>& original, Index file_rows,
@@ -302,8 +310,12 @@ Result<std::optional<Witness>> PreparedPencil::find_witness(const std::vector<In
 }
 
 double PreparedPencil::digits_error(double factor, int digits) const {
+  return digits_error(combination(factor), digits);
+}
+
+double PreparedPencil::digits_error(const ShiftedMatrix& matrix, int digits) const {
   // Each member was rounded on its own: the row sums of sum_t |coefficient_t| |A_t|, scaled.
-  const ShiftedMatrix matrix = combination(factor);
+  const Buffer<double>& scale = *matrix.scale;
   std::vector<double> sums(static_cast<std::size_t>(family_.rows), 0);
   for (Index j = 0; j < family_.rows; ++j) {
     for (Offset k = family_.column_start[j]; k < family_.column_start[Offset{j} + 1]; ++k) {
@@ -312,13 +324,13 @@ double PreparedPencil::digits_error(double factor, int digits) const {
       for (std::size_t t = 0; t < matrix.coefficients.size(); ++t) {
         size += std::fabs(matrix.coefficients[t] * family_.values[t][k]);
       }
-      size *= scale_[i] * scale_[j];
+      size *= scale[i] * scale[j];
       sums[static_cast<std::size_t>(i)] += size;
       if (i != j) sums[static_cast<std::size_t>(j)] += size;
     }
   }
   const double largest = sums.empty() ? 0 : *std::max_element(sums.begin(), sums.end());
-  return 0.5 * std::pow(10.0, 1 - digits) * largest * 1.001;
+  return half_unit_of(digits) * largest;
 }
 
 }  // namespace stanchion

@@ -53,10 +53,12 @@ class PreparedPencil {
   /// mu with S (second) S >= mu I, S the pencil's scaling, from a certified bound for the second matrix under its own
   /// scaling; 0 when nothing follows. For K alone the second matrix is I.
   double second_matrix_bound() const { return second_bound_; }
-  void set_second_bound_from_diagonal();
 
-  /// The second matrix alone.
-  Result<CertifiedInertia> certify_second(ThreadPool& pool, Outcome& outcome);
+  /// For a diagonal second matrix; `digits`: for every matrix that rounds to it.
+  void set_second_bound_from_diagonal(std::optional<int> digits);
+
+  /// The second matrix alone; `digits`: every matrix that rounds to it.
+  Result<CertifiedInertia> certify_second(std::optional<int> digits, ThreadPool& pool, Outcome& outcome);
 
   /// Half a unit of decimal digit `digits` of every entry at `factor`, as a bound on the 2-norm.
   double digits_error(double factor, int digits) const;
@@ -69,6 +71,7 @@ class PreparedPencil {
 
  private:
   ShiftedMatrix second_alone() const;
+  double digits_error(const ShiftedMatrix& matrix, int digits) const;
   Result<CertifiedInertia> run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                Outcome& outcome);
   Result<CertifiedInertia> run_on(const ShiftedMatrix& matrix, const CertifyOptions& options, RiskBudget& risk,

@@ -127,6 +127,42 @@ TEST(Count, CommonNullVectorsOfKAndMAreSaid) {
   EXPECT_FALSE(outcome.count->counts[0].below);
 }
 
+TEST(Count, WhereKIsSingularOnMasslessDofsTheInertiaItselfIsReported) {
+  // K - s M = diag(1 - s, -1, 0): one negative direction and one zero, whatever s < 1 (by hand).
+  ModelFiles files;
+  Request request;
+  request.input.stiffness = files.matrix("K.mtx", diagonal({1, -1, 0}));
+  request.input.mass = files.matrix("M.mtx", diagonal({1, 0, 0}));
+  request.pencil = Pencil::kMass;
+  request.shifts = {0.5};
+  const Outcome outcome = answer(run_count(request, {}));
+  const ShiftCount& count = outcome.count->counts[0];
+  EXPECT_NE(count.meaning.find("negative directions"), std::string::npos);
+  EXPECT_EQ(count.below_range, (std::pair<Index, Index>{1, 2}));
+}
+
+TEST(Count, TheDigitsOfKAndMCountForWhatGivesTheNumbersTheirMeaning) {
+  ModelFiles files;
+  Request request;
+  // Definite as written by 1e-6, but not with four digits.
+  request.input.stiffness = files.matrix("K.mtx", from_triplets(2, {{0, 0, 1}, {1, 0, 1}, {1, 1, 1 + 1e-6}}));
+  request.input.geometric = files.matrix("G.mtx", diagonal({-1, -1}));
+  request.pencil = Pencil::kGeometric;
+  request.shifts = {1.0};
+  EXPECT_FALSE(warned(answer(run_count(request, {})), "stiffness-not-definite"));
+  request.digits = 4;
+  EXPECT_TRUE(warned(answer(run_count(request, {})), "stiffness-not-definite"));
+
+  Request vibration;
+  vibration.input.stiffness = files.matrix("K2.mtx", diagonal({1, 2}));
+  vibration.input.mass = files.matrix("M.mtx", from_triplets(2, {{0, 0, 1}, {1, 0, 1}, {1, 1, 1 + 1e-6}}));
+  vibration.pencil = Pencil::kMass;
+  vibration.shifts = {0.1};
+  EXPECT_FALSE(warned(answer(run_count(vibration, {})), "mass-not-definite"));
+  vibration.digits = 4;
+  EXPECT_TRUE(warned(answer(run_count(vibration, {})), "mass-not-definite"));
+}
+
 TEST(Count, ForecastAnswersWithoutFactoring) {
   ModelFiles files;
   Request request = chain_count(files, 200, {});
