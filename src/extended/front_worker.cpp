@@ -182,8 +182,8 @@ void ScalarWorker<Scalar>::count_pivots(const RowsOfFront& rows, const ScalarEli
         break;
     }
     const double bound = row_error_[i] + gamma * growth_[i] + tiny;
-    // A NaN must not pass for a small number.
-    if (!(bound <= largest_row_error)) largest_row_error = bound;
+    // A NaN must not pass for a small number, nor give way to one.
+    if (!(bound <= largest_row_error)) largest_row_error = std::isnan(bound) ? INFINITY : bound;
   }
   for (std::size_t i = static_cast<std::size_t>(result.eliminated); i < row_error_.size(); ++i) {
     row_error_[i] += gamma * growth_[i] + tiny;

@@ -4,6 +4,7 @@
 #include <array>
 #include <cmath>
 #include <new>
+#include <numeric>
 #include <tuple>
 #include <vector>
 
@@ -67,6 +68,13 @@ void each_pivot(const Factor& factor, const Visit& visit) {
       if (root.pair) ++k;
     }
   }
+}
+
+/// The larger of two sizes. A NaN counts as infinite: none of the vectors may drop out of a maximum over all
+/// of them.
+double larger(double most, double size) {
+  if (std::isnan(size)) return INFINITY;
+  return size > most ? size : most;
 }
 
 Norms column_norms(const std::vector<double>& block) {
@@ -174,7 +182,7 @@ class RelativeTest {
     solve(v);
     const Norms z_norm = column_norms(v);
     if (first != nullptr) {
-      const double y_most = *std::max_element(y_norm.begin(), y_norm.end());
+      const double y_most = std::accumulate(y_norm.begin(), y_norm.end(), 0.0, larger);
       h_most_ = gamma_ * m_norm_ * y_most;
       if (!(h_most_ < g)) return false;
       beta_ = y_most / (g - h_most_);
@@ -213,7 +221,7 @@ class RelativeTest {
       const double rho =
           1.01 * kUnit * b_norm[i] + gamma_ * m_norm_ * u_norm[i] +
           8 * static_cast<double>(size.longest_row + 8) * kUnit * kUnit * size.norm * y_norm[i] + 0x1p-500;
-      most = std::max(most, u_norm[i] + beta_ * rho);
+      most = larger(most, u_norm[i] + beta_ * rho);
     }
     return most / (g - h_most_) * 1.001;
   }
@@ -273,16 +281,12 @@ class RelativeTest {
   /// ||F|| were 1 or more, it would be at least g.
   void judge(RelativeResult& result, double g, int steps, const Norms& v, const Norms& noise) {
     double most = 0;
-    for (std::size_t i = 0; i < kV; ++i) {
-      const double total = (v[i] + noise[i]) / g;
-      if (!(total <= most)) most = total;
-    }
+    for (std::size_t i = 0; i < kV; ++i) most = larger(most, (v[i] + noise[i]) / g);
     result.measured_part = *std::max_element(v.begin(), v.end()) / g;
     result.power_steps = steps;
     most *= 1.001;
     result.certified = most < 1;
-    result.relative_bound =
-        std::isnan(most) ? INFINITY : (result.certified ? std::pow(most, 1.0 / steps) * (1 + 1e-12) : most);
+    result.relative_bound = result.certified ? std::pow(most, 1.0 / steps) * (1 + 1e-12) : most;
     if (result.certified && second_norm_ > 0)
       result.exclusion_radius = (1 - result.relative_bound) / second_norm_ * 0.999;
   }
