@@ -188,13 +188,16 @@ Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, con
   certify_options.offsets.extended = extended_;
   const ShiftedMatrix second = second_alone();
   if (has_second_) certify_options.second = &second;
-  const double spent_before = risk.spent();
+  const std::size_t charges_before = risk.charges().size();
   auto certified = certify_inertia(analysis_, matrix, certify_options, pool);
   if (!certified.ok()) return certified.status();
   outcome.risk = risk.spent();
-  if (risk.spent() > spent_before) {
-    outcome.events.push_back({has_second_ ? std::optional(matrix.coefficients.back()) : std::nullopt,
-                              risk.spent() - spent_before, certified->certificate.level == Level::kStatistical});
+  const auto& charges = risk.charges();
+  for (std::size_t k = charges_before; k < charges.size();
+       ++k) {  // one event an attempt: the last may have passed
+    const bool passed = k + 1 == charges.size() && certified->certificate.level == Level::kStatistical;
+    outcome.events.push_back(
+        {has_second_ ? std::optional(matrix.coefficients.back()) : std::nullopt, charges[k], passed});
   }
   outcome.timings.factor += certified->seconds;
   outcome.timings.certify += certified->certify_seconds;

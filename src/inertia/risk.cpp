@@ -12,6 +12,7 @@ double event_share(double risk, Index number) {
 double RiskBudget::charge() {
   const double share = event_share(risk_, ++attempts_);
   spent_ += share;
+  charges_.push_back(share);
   return share;
 }
 

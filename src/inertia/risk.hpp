@@ -1,6 +1,8 @@
 // The failure probability of a whole document, spent event by event, before anything is drawn.
 #pragma once
 
+#include <vector>
+
 #include "stanchion/types.hpp"
 
 namespace stanchion {
@@ -28,6 +30,9 @@ class RiskBudget {
   /// Books what a part of the document with a budget of its own has spent; event_share() keeps the sum within the risk.
   void take(double spent) { spent_ += spent; }
 
+  /// What charge() has taken here, in order.
+  const std::vector<double>& charges() const { return charges_; }
+
   double spent() const { return spent_; }
   double total() const { return risk_; }
   Index attempts() const { return attempts_; }
@@ -35,6 +40,7 @@ class RiskBudget {
  private:
   double risk_, spent_;
   Index attempts_;
+  std::vector<double> charges_;
 };
 
 /// What event `number` (from 1, each used once) of a document may fail with: 6 risk / (pi^2 number^2), so that any

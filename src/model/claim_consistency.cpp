@@ -4,6 +4,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <limits>
 
 #include "model/claim_facts.hpp"
 #include "model/names.hpp"
@@ -62,6 +63,14 @@ bool level_fits(const Certificate& certificate) {
          !certificate.smallest_eigenvalue_above;
 }
 
+/// A count rests on its own certificate and may rest on others besides (of K or M): it is as sure or less.
+bool no_surer(const ShiftCount& count, const Certificate& certificate) {
+  if (count.level == Level::kProved) return certificate.level == Level::kProved && !count.failure_probability;
+  return count.level == Level::kStatistical && certificate.level != Level::kNone &&
+         count.failure_probability && *count.failure_probability > 0 &&
+         *count.failure_probability >= certificate.failure_probability.value_or(0);
+}
+
 std::optional<std::string> contradiction_within(const Certificate& certificate) {
   if (!level_fits(certificate))
     return "the certificate contradicts itself: its method does not give its level";
@@ -100,16 +109,44 @@ std::optional<std::string> contradiction_within(const ShiftCount& count, Index r
     return "the certificate contradicts itself: its count and its range do not agree";
   }
   const Certificate& certificate = count.certificate;
-  const bool backed = count.method == certificate.method &&
-                      (!count.below || (count.level == certificate.level &&
-                                        count.failure_probability == certificate.failure_probability));
-  if (!backed) return "the certificate contradicts itself: count and certificate are backed differently";
+  if (count.method != certificate.method || (count.below && !no_surer(count, certificate)))
+    return "the certificate contradicts itself: count and certificate are backed differently";
   if (auto why = contradiction_within(certificate)) return why;
   if (certificate.method != "offsets" || rows == 0) return std::nullopt;
   const Facts runs = facts_of_runs(certificate);
   const auto given = counts_from_runs(certificate);
   if (given && given->zero == most - least && !cannot_both_be_true(runs, runs)) return std::nullopt;
   return "the certificate contradicts itself: its factorizations do not give its range";
+}
+
+std::optional<std::string> contradiction_within_risk(const Outcome& outcome) {
+  constexpr double kRounding = 1e-9;
+  const auto wrong = [](const char* what) {
+    return fmt::format("the certificate contradicts itself: {}", what);
+  };
+  double charged = 0, surest = std::numeric_limits<double>::infinity();
+  for (const RiskEvent& event : outcome.events) {
+    charged += event.charged;
+    if (event.certified) surest = std::min(surest, event.charged);
+  }
+  if (std::fabs(charged - outcome.risk) > kRounding * outcome.risk) {
+    return wrong("its attempts do not add up to the risk spent");
+  }
+  if (outcome.risk > outcome.risk_allowed * (1 + kRounding)) return wrong("more risk was spent than allowed");
+  const auto fits = [&](Level level, const std::optional<double>& failure) {
+    return level != Level::kStatistical ||
+           (failure && *failure >= surest * (1 - kRounding) && *failure <= outcome.risk * (1 + kRounding));
+  };
+  bool all = !outcome.check ||
+             fits(outcome.check->certificate.level, outcome.check->certificate.failure_probability);
+  if (outcome.count) {
+    for (const ShiftCount& count : outcome.count->counts) {
+      all = all && fits(count.level, count.failure_probability) &&
+            fits(count.certificate.level, count.certificate.failure_probability);
+    }
+  }
+  if (all) return std::nullopt;
+  return wrong("a failure probability is not that of its attempts");
 }
 
 }  // namespace stanchion

@@ -15,4 +15,9 @@ std::string in_words(const Inertia& inertia);
 std::optional<std::string> contradiction_within(const CheckOutcome& check, Index rows);
 std::optional<std::string> contradiction_within(const ShiftCount& count, Index rows);
 
+/// Why the failure probabilities of an outcome do not fit together: every statistical attempt is charged
+/// once, the charges add up to what was spent and stay within what was allowed, and no statement is surer
+/// than an attempt that passed.
+std::optional<std::string> contradiction_within_risk(const Outcome& outcome);
+
 }  // namespace stanchion

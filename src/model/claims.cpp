@@ -8,6 +8,7 @@
 
 #include "model/claim_consistency.hpp"
 #include "model/claim_facts.hpp"
+#include "model/claim_radius.hpp"
 #include "model/names.hpp"
 
 namespace stanchion {
@@ -132,6 +133,12 @@ ClaimComparison compare_inertia(const CheckOutcome& claimed, const CheckOutcome&
   return compare_signs(claimed.inertia, found.inertia, "");
 }
 
+const ClaimComparison& worst_of(const std::vector<ClaimComparison>& parts) {
+  return *std::max_element(
+      parts.begin(), parts.end(),
+      [](const ClaimComparison& a, const ClaimComparison& b) { return a.agreement < b.agreement; });
+}
+
 ClaimComparison compare_check(const CheckOutcome& claimed, const CheckOutcome& found, Index rows,
                               bool same_scaling) {
   std::vector<ClaimComparison> parts{compare_inertia(claimed, found, rows, same_scaling)};
@@ -144,9 +151,7 @@ ClaimComparison compare_check(const CheckOutcome& claimed, const CheckOutcome& f
                         ? compare_roundings(*claimed.verdict_for_digits, *found.verdict_for_digits)
                         : not_repeated("the second path did not ask about roundings"));
   }
-  ClaimComparison result = *std::max_element(
-      parts.begin(), parts.end(),
-      [](const ClaimComparison& a, const ClaimComparison& b) { return a.agreement < b.agreement; });
+  ClaimComparison result = worst_of(parts);
   result.claimed = in_words(claimed);
   result.found = in_words(found);
   return result;
@@ -154,7 +159,11 @@ ClaimComparison compare_check(const CheckOutcome& claimed, const CheckOutcome& f
 
 std::string in_words(const ShiftCount& count) {
   if (count.certificate.level == Level::kNone) return "nothing certified";
-  if (count.below_range.first == count.below_range.second) return fmt::format("{}", count.below_range.first);
+  if (count.below_range.first == count.below_range.second) {
+    const std::string number = fmt::format("{}", count.below_range.first);
+    if (!count.no_eigenvalue_within) return number;
+    return fmt::format("{}, none within {:.3g}", number, *count.no_eigenvalue_within);
+  }
   return fmt::format("{} to {}", count.below_range.first, count.below_range.second);
 }
 
@@ -192,9 +201,27 @@ std::vector<ClaimComparison> compare_sentences(const CountOutcome& claimed, cons
 
 }  // namespace
 
-std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcome& found) {
+std::vector<double> radius_ends(const Outcome& claimed, const Outcome& found) {
+  std::vector<double> ends;
+  if (!claimed.count || !found.count) return ends;
+  const std::size_t many = std::min(claimed.count->counts.size(), found.count->counts.size());
+  for (std::size_t k = 0; k < many; ++k) {
+    const ShiftCount& count = claimed.count->counts[k];
+    if (!needs_ends(count, found.count->counts[k])) continue;
+    const double inside = *count.no_eigenvalue_within * (1 - 0x1p-40);
+    ends.insert(ends.end(), {count.shift - inside, count.shift + inside});
+  }
+  return ends;
+}
+
+std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcome& found,
+                                            std::span<const ShiftCount> at_ends) {
   const bool same_scaling = !claimed.scaling_sha256.empty() && claimed.scaling_sha256 == found.scaling_sha256;
   std::vector<ClaimComparison> comparisons;
+  if (auto why = contradiction_within_risk(claimed)) {
+    comparisons.push_back(
+        {{}, Agreement::kContradicted, fmt::format("risk {:.3g}", claimed.risk), "-", *why});
+  }
   if (claimed.check && found.check) {
     comparisons.push_back(compare_check(*claimed.check, *found.check, found.rows_analysed, same_scaling));
   }
@@ -203,7 +230,13 @@ std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcom
     for (std::size_t k = 0; k < many; ++k) {
       const ShiftCount& old_count = claimed.count->counts[k];
       const ShiftCount& new_count = found.count->counts[k];
-      ClaimComparison comparison = compare_count(old_count, new_count, found.rows_analysed, same_scaling);
+      std::vector<ClaimComparison> parts{
+          compare_count(old_count, new_count, found.rows_analysed, same_scaling)};
+      const bool looked = needs_ends(old_count, new_count) && at_ends.size() >= 2;
+      parts.push_back(compare_radius(old_count, new_count, looked ? &at_ends[0] : nullptr,
+                                     looked ? &at_ends[1] : nullptr));
+      if (looked) at_ends = at_ends.subspan(2);
+      ClaimComparison comparison = worst_of(parts);
       comparison.shift = old_count.shift;
       comparison.claimed = in_words(old_count);
       comparison.found = in_words(new_count);
@@ -218,10 +251,7 @@ std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcom
 
 Agreement worst(const std::vector<ClaimComparison>& comparisons) {
   if (comparisons.empty()) return Agreement::kNotRepeated;
-  return std::max_element(
-             comparisons.begin(), comparisons.end(),
-             [](const ClaimComparison& a, const ClaimComparison& b) { return a.agreement < b.agreement; })
-      ->agreement;
+  return worst_of(comparisons).agreement;
 }
 
 std::vector<double> telling_resolutions(const Certificate& claimed, const Certificate& found) {

@@ -7,6 +7,7 @@
 #pragma once
 
 #include <optional>
+#include <span>
 #include <string>
 #include <vector>
 
@@ -28,8 +29,15 @@ struct ClaimComparison {
 };
 
 /// Compares the answers of `claimed` and `found`, which are to one question (both check, or both count with
-/// the same shifts).
-std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcome& found);
+/// the same shifts), and what the risk of `claimed` must be. `at_ends`: counts by the second path at
+/// radius_ends(claimed, found), in that order; without them only distances that `found` itself gives are
+/// repeated.
+std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcome& found,
+                                            std::span<const ShiftCount> at_ends = {});
+
+/// Shifts at which counts can show what `claimed` says of distances without an eigenvalue and `found` does
+/// not: the two ends of each such interval, a little inside.
+std::vector<double> radius_ends(const Outcome& claimed, const Outcome& found);
 
 /// The worst of them; kNotRepeated when there is none.
 Agreement worst(const std::vector<ClaimComparison>& comparisons);

@@ -137,7 +137,7 @@ ShiftCount count_of(const Member& claim) {
   count.below_range = pair_of<Index>(claim.at("below_range"), index_of);
   count.holds_outside = unless_null(claim.at("holds_outside"),
                                     [](const Member& band) { return pair_of<double>(band, real_of); });
-  count.no_eigenvalue_within = unless_null(claim.at("no_eigenvalue_within"), real_of);
+  count.no_eigenvalue_within = unless_null(claim.at("no_eigenvalue_within"), bound_of);
   count.certificate = certificate_of(claim.at("certificate"));
   return count;
 }
@@ -218,6 +218,10 @@ CertificateDocument document_of(const Member& root) {
   }
   document.request.risk = outcome.risk_allowed = root.at("risk").at("allowed").real();
   outcome.risk = root.at("risk").at("spent").real();
+  for (const Member& event : root.at("events").items()) {
+    outcome.events.push_back({optional_real(event.at("factor")), probability_of(event.at("charged")),
+                              event.at("certified").truth()});
+  }
   document.request.seed = outcome.seed = root.at("seed").natural();
   if (outcome.count &&
       !std::equal(document.request.shifts.begin(), document.request.shifts.end(),

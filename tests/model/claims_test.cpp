@@ -33,6 +33,8 @@ Outcome relative_check_of(Index negative) {
   certificate.method = "relative";
   certificate.relative_bound = 1e-3;
   certificate.failure_probability = 1e-6;
+  outcome.risk = outcome.risk_allowed = 1e-6;
+  outcome.events = {{{}, 1e-6, true}};
   certificate.resolution.reset();
   certificate.error_bound.reset();
   certificate.runs.clear();
@@ -46,7 +48,10 @@ Outcome count_of(Index least, Index most) {
   count.shift = 2.5;
   count.meaning = "eigenvalues below the shift";
   count.below_range = {least, most};
-  count.certificate = relative_check_of(0).check->certificate;
+  const Outcome relative = relative_check_of(0);
+  outcome.risk = outcome.risk_allowed = relative.risk;
+  outcome.events = relative.events;
+  count.certificate = relative.check->certificate;
   count.method = count.certificate.method;
   if (least == most) {
     count.below = least;
@@ -224,6 +229,94 @@ TEST(Claims, VerdictsForAllRoundings) {
   EXPECT_EQ(between(claimed, found), Agreement::kContradicted);
   found.check->verdict_for_digits.reset();
   EXPECT_EQ(between(claimed, found), Agreement::kNotRepeated);
+}
+
+TEST(Claims, ACountMayRestOnMoreThanItsOwnCertificate) {
+  // K certified definite by statistics, the factorization at the shift by proof: the count is statistical.
+  Outcome claimed = count_of(3, 3);
+  ShiftCount& count = claimed.count->counts[0];
+  count.certificate = check_of(3, 0).check->certificate;
+  count.method = "offsets";
+  EXPECT_EQ(between(claimed, count_of(3, 3)), Agreement::kAgreed);
+  count.failure_probability.reset();
+  EXPECT_EQ(between(claimed, count_of(3, 3)), Agreement::kContradicted)
+      << "statistical without a probability";
+  // Both by statistics, after one attempt that did not pass: the failure probabilities of both add up.
+  Outcome both = count_of(3, 3);
+  both.events = {{{}, 6e-7, false}, {{}, 1.5e-7, true}, {-2.5, 0.7e-7, true}};
+  both.risk = 8.2e-7;
+  both.count->counts[0].certificate.failure_probability = 0.7e-7;
+  both.count->counts[0].failure_probability = 2.2e-7;
+  EXPECT_EQ(between(both, count_of(3, 3)), Agreement::kAgreed);
+  both.count->counts[0].failure_probability = 0.5e-7;
+  EXPECT_EQ(between(both, count_of(3, 3)), Agreement::kContradicted) << "surer than its own certificate";
+  both.count->counts[0].failure_probability = both.count->counts[0].certificate.failure_probability = 1e-9;
+  EXPECT_EQ(between(both, count_of(3, 3)), Agreement::kContradicted) << "surer than any attempt that passed";
+}
+
+TEST(Claims, TheRiskIsThatOfTheAttempts) {
+  const auto altered = [](auto change) {
+    Outcome claimed = relative_check_of(2);
+    change(claimed);
+    return between(claimed, check_of(2, 0));
+  };
+  EXPECT_EQ(altered([](Outcome&) {}), Agreement::kAgreed);
+  EXPECT_EQ(altered([](Outcome& o) { o.risk = 1e-9; }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Outcome& o) { o.events.push_back({{}, 1e-7, false}); }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Outcome& o) { o.events.clear(); }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Outcome& o) { o.risk_allowed = 1e-7; }), Agreement::kContradicted);
+  EXPECT_EQ(altered([](Outcome& o) { o.check->certificate.failure_probability = 1e-8; }),
+            Agreement::kContradicted);
+}
+
+/// A count with a distance that holds no eigenvalue.
+Outcome count_with_radius(double radius) {
+  Outcome outcome = count_of(3, 3);
+  outcome.count->counts[0].no_eigenvalue_within = radius;
+  return outcome;
+}
+
+TEST(Claims, DistancesWithoutAnEigenvalueAreLookedInto) {
+  const Outcome claimed = count_with_radius(0.5);
+  EXPECT_EQ(between(claimed, count_with_radius(0.5)), Agreement::kAgreed);
+  EXPECT_TRUE(radius_ends(claimed, count_with_radius(0.6)).empty());
+  EXPECT_EQ(between(claimed, count_with_radius(0.1)), Agreement::kNotRepeated);
+  const auto ends = radius_ends(claimed, count_of(3, 3));
+  ASSERT_EQ(ends.size(), 2U);
+  EXPECT_NEAR(ends[0], 2.0, 1e-9);
+  EXPECT_NEAR(ends[1], 3.0, 1e-9);
+  EXPECT_GT(ends[0], 2.0);
+  EXPECT_LT(ends[1], 3.0);
+  const auto with_ends = [&](std::pair<Index, Index> low, std::pair<Index, Index> high,
+                             const char* meaning = "eigenvalues below the shift", double moved = 0) {
+    Outcome moved_claim = claimed, found = count_of(3, 3);
+    for (Outcome* outcome : {&moved_claim, &found}) {
+      outcome->count->counts[0].meaning = meaning;
+      outcome->count->counts[0].shift += moved;
+    }
+    std::vector<ShiftCount> counts;
+    for (const auto& [range, shift] : {std::pair{low, ends[0]}, std::pair{high, ends[1]}}) {
+      counts.push_back(count_of(range.first, range.second).count->counts[0]);
+      counts.back().meaning = meaning;
+      counts.back().shift = shift + moved;
+    }
+    return worst(compare_claims(moved_claim, found, counts));
+  };
+  EXPECT_EQ(with_ends({3, 3}, {3, 3}), Agreement::kAgreed);
+  EXPECT_EQ(with_ends({3, 3}, {4, 4}), Agreement::kContradicted);
+  EXPECT_EQ(with_ends({2, 3}, {4, 5}), Agreement::kContradicted);
+  EXPECT_EQ(with_ends({3, 3}, {3, 4}), Agreement::kNotRepeated);
+  // Factors between 0 and the shift: on the negative side the farther end is the lower one.
+  const char* factors = "critical factors between 0 and the shift";
+  EXPECT_EQ(with_ends({3, 3}, {3, 3}, factors, -5), Agreement::kAgreed);
+  EXPECT_EQ(with_ends({4, 4}, {3, 3}, factors, -5), Agreement::kContradicted);
+  EXPECT_EQ(with_ends({0, 0}, {0, 0}, factors, -2.5), Agreement::kAgreed);
+  EXPECT_EQ(with_ends({0, 0}, {1, 1}, factors, -2.5), Agreement::kContradicted);
+  EXPECT_EQ(with_ends({1, 1}, {0, 0}, factors, -2.5), Agreement::kContradicted);
+  // Negative directions may come and go: as many at both ends shows nothing.
+  const char* directions = "negative directions of K + f G at the shift";
+  EXPECT_EQ(with_ends({3, 3}, {3, 3}, directions), Agreement::kNotRepeated);
+  EXPECT_EQ(with_ends({4, 4}, {3, 3}, directions), Agreement::kContradicted);
 }
 
 }  // namespace

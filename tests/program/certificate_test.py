@@ -165,6 +165,23 @@ class ContradictedTest(CertificateTest):
         self.certify(0, "count", self.matrix("D.mtx", 3, diagonal([1, 2, 3])), "--at", "1.5")
         self.contradict(lambda document: document["claims"][0].update(below=2))
 
+    def test_a_distance_too_wide(self):
+        # diag(1, 2, ..., 40): the nearest eigenvalue to 7.25 is 0.25 away.
+        entries = {(i, i): float(i + 1) for i in range(40)}
+        self.certify(0, "count", self.matrix("D.mtx", 40, entries), "--at", "7.25")
+
+        def change(document, radius):
+            document["claims"][0]["no_eigenvalue_within"] = radius
+
+        self.tamper(lambda document: change(document, 0.2))
+        self.assertEqual(self.recheck(0)["result"], "agreed")
+        self.contradict(lambda document: change(document, 0.3))
+        self.assertIn("an eigenvalue lies within 0.3", self.text)
+
+    def test_a_risk_that_was_not_spent(self):
+        self.certify(0, "count", self.matrix("D.mtx", 3, diagonal([1, 2, 3])), "--at", "1.5")
+        self.contradict(lambda document: document["risk"].update(spent=1e-9))
+
     def test_an_inertia_changed_by_one(self):
         path = self.matrix("D.mtx", 6, diagonal([3, -1, 2, -5, 1, 1]))
         for negative, positive in ((3, 3), (1, 5), (3, 4), (2, 3)):
