@@ -10,9 +10,10 @@
 #include "dense/selftest.hpp"
 #include "engine/fingerprint.hpp"
 #include "engine/host.hpp"
+#include "extended/factorize.hpp"
+#include "inertia/witness.hpp"
 #include "model/not_checked.hpp"
 #include "sparse/product.hpp"
-#include "inertia/witness.hpp"
 #include "sparse/scaling.hpp"
 
 namespace stanchion {
@@ -146,7 +147,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   outcome.work.largest_front = forecast.largest_front;
   const Offset resident = resident_bytes();
   pencil.resident_before_ = resident;
-  outcome.memory.forecast = std::max(peak_resident_bytes(), resident + forecast.peak_bytes_count);
+  outcome.memory.forecast = std::max(peak_resident_bytes(), resident + pencil.counting_bytes());
   if (Status fits = check_cap(request, outcome.memory.forecast); !fits.ok()) return fits;
   if (forecast.factor_flops > kLongJobFlops && context.progress) context.progress("self-test", 0);
   if (forecast.factor_flops > kLongJobFlops) {
@@ -155,6 +156,11 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   }
   if (request.memory_cap_bytes) pencil.factor_options_.memory_cap_bytes = *request.memory_cap_bytes - resident;
   return pencil;
+}
+
+/// Of a factorization whose factor is not kept, in the precision asked for.
+Offset PreparedPencil::counting_bytes() const {
+  return extended_ ? extended_peak_bytes_forecast(analysis_) : analysis_.forecast.peak_bytes_count;
 }
 
 /// What keeping the factor may take: the cap, or most of what the machine has left, less what is in use.
@@ -240,7 +246,7 @@ void PreparedPencil::merge(const Outcome& scratch, Outcome& outcome) {
 }
 
 int PreparedPencil::side_by_side(int most) const {
-  const Offset each = extended_ ? 3 * analysis_.forecast.peak_bytes_count : analysis_.forecast.peak_bytes_solve;
+  const Offset each = extended_ ? counting_bytes() : analysis_.forecast.peak_bytes_solve;
   const Offset room = bytes_for_factor();
   return static_cast<int>(std::clamp<Offset>(each > 0 ? room / each : most, 1, std::max(most, 1)));
 }

@@ -76,6 +76,7 @@ class PreparedPencil {
                                Outcome& outcome);
   Result<CertifiedInertia> run_on(const ShiftedMatrix& matrix, const CertifyOptions& options, RiskBudget& risk,
                                   ThreadPool& pool, Outcome& outcome) const;
+  Offset counting_bytes() const;
   Offset bytes_for_factor() const;
 
   Analysis analysis_;

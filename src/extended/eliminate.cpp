@@ -166,6 +166,7 @@ class Eliminator {
     ++panel.next;
     if (rows == 0) {
       front_.growth[at] += size(d);
+      add_image(at, matrix_.column(at, at), below, front_.sign[at] < 0 ? -d : d);
       return;
     }
     const Strip<Scalar> w = scaled(panel, at), l = matrix_.column(at, at) + 1;
@@ -176,7 +177,26 @@ class Eliminator {
     const double weight = size(d) * sum;
     front_.growth[at] += weight;
     kernels_.add_weighted(l, rows, weight, front_.growth + below);
+    add_image(at, l, below, d * sign_sum(at, l, below));
     for (Index j = below; j < panel.update_end; ++j) apply(at, j, load(w, j));
+  }
+
+  /// Entry `at` of L^T x: x there, and the column `l` of L in the rows from `below` on.
+  Scalar sign_sum(Index at, const Strip<Scalar>& l, Index below) const {
+    Scalar sum;
+    widen(front_.sign[at], sum);
+    for (Index i = below; i < order_; ++i) {
+      const Scalar entry = load(l, i - below);
+      sum = sum + (front_.sign[i] < 0 ? -entry : entry);
+    }
+    return sum;
+  }
+
+  /// image += (column of L, with a 1 in row `at`) times `weight`.
+  void add_image(Index at, const Strip<Scalar>& l, Index below, Scalar weight) {
+    store(front_.image, at, load(front_.image, at) + weight);
+    const Scalar taken = -weight;
+    kernels_.subtract_products(front_.image + below, l, 0, &taken, order_ - below, 1);
   }
 
   void take_pair(Panel& panel, Index q, Index r) {
@@ -208,6 +228,9 @@ class Eliminator {
     front_.growth[at + 1] += weight_second;
     kernels_.add_weighted(l_first, rows, weight_first, front_.growth + below);
     kernels_.add_weighted(l_second, rows, weight_second, front_.growth + below);
+    const Scalar z_first = sign_sum(at, l_first, below), z_second = sign_sum(at + 1, l_second, below);
+    add_image(at, l_first, below, pivot.a * z_first + pivot.b * z_second);
+    add_image(at + 1, l_second, below, pivot.b * z_first + pivot.c * z_second);
     for (Index j = below; j < panel.update_end; ++j) {
       apply(at, j, load(first, j));
       apply(at + 1, j, load(second, j));
@@ -265,6 +288,9 @@ class Eliminator {
     std::swap(front_.label[i], front_.label[j]);
     std::swap(front_.row_error[i], front_.row_error[j]);
     std::swap(front_.growth[i], front_.growth[j]);
+    std::swap(front_.sign[i], front_.sign[j]);
+    swap_entries(front_.image + i, front_.image + j);
+    std::swap(front_.image_error[i], front_.image_error[j]);
   }
 
   const ScalarFront<Scalar>& front_;

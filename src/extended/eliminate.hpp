@@ -26,8 +26,9 @@ struct ScalarBlock {
 };
 
 /// Rows [0, candidates) of `matrix` may be eliminated, the rest only updated. Nothing is owned. The arrays
-/// have one element a row and are permuted along; `row_error` is only permuted, `growth` gets row sums of
-/// |L||D||L^T|.
+/// have one element a row (`image`: one a row and plane) and are permuted along; `row_error` and
+/// `image_error` are only permuted, `growth` gets row sums of |L||D||L^T|, `image` the front's share of L D
+/// L^T x.
 template <class Scalar>
 struct ScalarFront {
   ScalarBlock<Scalar>
@@ -38,6 +39,9 @@ struct ScalarFront {
   Index* label = nullptr;
   double* row_error = nullptr;
   double* growth = nullptr;
+  double* sign = nullptr;  ///< x, +1 or -1 a row
+  Strip<Scalar> image;
+  double* image_error = nullptr;
 };
 
 struct ScalarOptions {

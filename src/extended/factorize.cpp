@@ -23,7 +23,7 @@ class ScalarFactorizer {
  public:
   ScalarFactorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
                    ThreadPool& pool)
-      : run_{analysis, matrix, options, {}, {}, {}, {}, {}}, pool_(pool) {
+      : run_{analysis, matrix, options, {}, {}, {}, {}, {}, {}}, pool_(pool) {
     const auto fronts = static_cast<std::size_t>(analysis.tree.fronts);
     run_.children.resize(fronts);
     run_.waiting.resize(fronts);
@@ -36,6 +36,8 @@ class ScalarFactorizer {
   Result<Factorization> run() {
     const Stopwatch watch;
     Factorization result;
+    run_.probe = Worker::draw_probe(run_.matrix, run_.options.seed);
+    run_.book(run_.probe.bytes());
     result.component_signs.resize(static_cast<std::size_t>(run_.analysis.tree.components));
     run_subtrees();
     collect(result);
@@ -130,12 +132,19 @@ class ScalarFactorizer {
     }
   }
 
+  static void note_fault(Factorization& result, Index row) {
+    if (row < 0) return;
+    result.fault_row = result.fault ? std::min(result.fault_row, row) : row;
+    result.fault = true;
+  }
+
   /// Adds the workers' counts to the result and lets them go.
   void collect(Factorization& result) {
     for (const auto& worker : workers_) {
       if (!worker) continue;
       result.stopped = result.stopped || worker->stopped;
       result.breakdown = result.breakdown || worker->breakdown;
+      note_fault(result, worker->fault_row);
       result.delayed_pivots += worker->delayed_pivots;
       result.two_by_two_pivots += worker->two_by_two_pivots;
       if (!(worker->largest_row_error <= result.error_bound)) result.error_bound = worker->largest_row_error;

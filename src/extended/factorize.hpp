@@ -7,9 +7,10 @@ namespace stanchion {
 
 /// As factorize(), in double-double: counts, delays and a proved error bound (error_bound.md), of the order
 /// of 10^-30 times the growth where factorize() gives 10^-15. The factor is not kept (options.keep_factor is
-/// ignored). A pivot_threshold above 0.35 counts as 0.35. Entries are formed from the data without a rounding
-/// to double. Same bits for any number of threads; cap, progress and cancellation as there; same errors.
-/// Cost: see extended_seconds_forecast; memory twice that of factorize() at most.
+/// ignored). Carries the vector that detects faults of the machine. A pivot_threshold above 0.35 counts as
+/// 0.35. Entries are formed from the data without a rounding to double. Same bits for any number of threads;
+/// cap, progress and cancellation as there; same errors. Cost: see extended_seconds_forecast; memory twice
+/// that of factorize() at most.
 Result<Factorization> factorize_extended(const Analysis& analysis, const ShiftedMatrix& matrix,
                                          const FactorOptions& options, ThreadPool& pool);
 

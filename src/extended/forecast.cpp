@@ -10,9 +10,11 @@ namespace {
 
 constexpr Index kTimedRows = 128;
 /// What is spent besides products, in seconds: assembling and handing on one entry of a front; starting one
-/// call of the inner loop (one a column of the front and pivot, inside a panel); forming and booking one row.
-/// Measured on a server of 2023; a slower machine has slower products too.
-constexpr double kSecondsPerEntry = 8e-9, kSecondsPerCall = 14e-9, kSecondsPerRow = 1e-7;
+/// call of the inner loop (one a column of the front and pivot, inside a panel); forming and booking one row;
+/// one entry of L in the image that detects faults. Measured on a server of 2023; a slower machine has slower
+/// products too.
+constexpr double kSecondsPerEntry = 8e-9, kSecondsPerCall = 14e-9, kSecondsPerRow = 2e-7,
+                 kSecondsPerImage = 1e-8;
 /// Share of the speed of the bare loop that whole fronts reach.
 constexpr double kEfficiency = 0.8;
 
@@ -43,6 +45,7 @@ double extended_seconds_forecast(const Analysis& analysis) {
     const double panel = std::min<double>(pivots, kExtendedPanel);
     products += front_flops(tree.order(f), tree.pivots(f)) / 2;
     overhead += kSecondsPerEntry * order * (order + 1) / 2 + kSecondsPerCall * (pivots * panel / 2 + order);
+    overhead += kSecondsPerImage * order * pivots;
   }
   const double workers = std::max(1, analysis.schedule.workers);
   return (products / (kEfficiency * products_per_second()) + overhead) / workers;

@@ -5,6 +5,7 @@
 #include <cmath>
 
 #include "dense/trailing_update.hpp"
+#include "numeric/fault_probe.hpp"
 
 namespace stanchion {
 namespace {
@@ -96,6 +97,30 @@ void ScalarWorker<Scalar>::add_matrix_entries(const RowsOfFront& rows, const Sca
 }
 
 template <class Scalar>
+ScalarProbe ScalarWorker<Scalar>::draw_probe(const ShiftedMatrix& matrix, std::uint64_t seed) {
+  const MatrixFamily& family = *matrix.family;
+  const Index rows = family.rows;
+  ScalarProbe probe{draw_signs(rows, seed, matrix.offset), Buffer<double>(kPlanes * rows, 0.0),
+                    Buffer<double>(rows, 0.0)};
+  const Strip<Scalar> product{probe.product.data(), rows};
+  // Multiplying by a sign is exact; every addition rounds by at most a unit of its result.
+  const auto add = [&](Index row, Scalar entry, signed char sign) {
+    const Scalar sum = load(product, row) + (sign < 0 ? -entry : entry);
+    store(product, row, sum);
+    probe.product_error[row] += kUnit * std::fabs(head(sum));
+  };
+  for (Index j = 0; j < rows; ++j) {
+    for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
+      const Index i = family.row[k];
+      const Scalar entry = form_entry<Scalar>(matrix, k, i, j).value;
+      add(j, entry, probe.sign[i]);
+      if (i != j) add(i, entry, probe.sign[j]);
+    }
+  }
+  return probe;
+}
+
+template <class Scalar>
 void ScalarWorker<Scalar>::add_contribution(Index child, const ScalarBlock<Scalar>& matrix,
                                             ThreadPool* team) {
   const AssemblyTree& tree = run_.analysis.tree;
@@ -110,6 +135,12 @@ void ScalarWorker<Scalar>::add_contribution(Index child, const ScalarBlock<Scala
     row_error_[to] += block.row_error[i];
     addend_sums_[to] += block.row_sums[i];
     ++addends_[to];
+    const Strip<Scalar> from{block.image, block.order},
+        image{image_.data(), static_cast<Offset>(label_.size())};
+    const auto row = static_cast<Offset>(to);
+    const Scalar sum = load(image, row) + load(from, i);
+    store(image, row, sum);
+    image_error_[to] += block.image_error[i] + kUnit * std::fabs(head(sum));
   }
   const Index pieces = (block.order + kScatterColumns - 1) / kScatterColumns;
   for_each_piece(team, pieces, [&](Offset piece) {
@@ -126,6 +157,10 @@ void ScalarWorker<Scalar>::assemble(const RowsOfFront& rows, const ScalarBlock<S
   growth_.assign(order, 0);
   addend_sums_.assign(order, 0);
   addends_.assign(order, 0);
+  image_.assign(order * static_cast<std::size_t>(kPlanes), 0);
+  image_error_.assign(order, 0);
+  sign_.clear();
+  for (const Index position : label_) sign_.push_back(run_.probe.sign[position]);
   std::fill_n(matrix.data, ScalarBlock<Scalar>::doubles(matrix.layout), 0.0);
   add_matrix_entries(rows, matrix);
   for (const Index child : run_.children[static_cast<std::size_t>(rows.front)])
@@ -136,6 +171,8 @@ void ScalarWorker<Scalar>::assemble(const RowsOfFront& rows, const ScalarBlock<S
 }
 
 // The rest of the class is instantiated in front_worker.cpp.
+template ScalarProbe ScalarWorker<double>::draw_probe(const ShiftedMatrix&, std::uint64_t);
+template ScalarProbe ScalarWorker<DoubleDouble>::draw_probe(const ShiftedMatrix&, std::uint64_t);
 template void ScalarWorker<double>::assemble(const RowsOfFront&, const ScalarBlock<double>&, ThreadPool*);
 template void ScalarWorker<double>::add_matrix_entries(const RowsOfFront&, const ScalarBlock<double>&);
 template void ScalarWorker<double>::add_contribution(Index, const ScalarBlock<double>&, ThreadPool*);

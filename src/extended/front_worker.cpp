@@ -10,6 +10,10 @@ namespace {
 constexpr double kMostThreshold =
     0.35;  ///< above, a last front could be left with candidates that fit no pivot
 
+/// Roundings of an image beyond one a pivot and one a row: (1) counts 3, D (L^T x) at most 4, and one of
+/// second order.
+constexpr double kImageRoundings = 8;
+
 Status memory_limit(Offset reached) {
   return Status::resource_limit("memory-cap",
                                 "the numeric phase needs more memory than allowed; it had reached " +
@@ -126,8 +130,16 @@ ScalarElimination ScalarWorker<Scalar>::eliminate(const RowsOfFront& rows, const
   const auto candidates = static_cast<std::size_t>(rows.candidates);
   diagonal_.resize(candidates);
   kind_.resize(candidates);
-  const ScalarFront<Scalar> work{matrix,        rows.candidates,   kind_.data(),  diagonal_.data(),
-                                 label_.data(), row_error_.data(), growth_.data()};
+  const ScalarFront<Scalar> work{matrix,
+                                 rows.candidates,
+                                 kind_.data(),
+                                 diagonal_.data(),
+                                 label_.data(),
+                                 row_error_.data(),
+                                 growth_.data(),
+                                 sign_.data(),
+                                 {image_.data(), rows.order},
+                                 image_error_.data()};
   const ScalarOptions options{run_.options.definite, std::min(run_.options.pivot_threshold, kMostThreshold),
                               false};
   return eliminate_scalar_front(work, options, scratch_, team);
@@ -152,10 +164,41 @@ Status ScalarWorker<Scalar>::process(Index front, ThreadPool* team) {
     run_.abandon = true;
     return {};
   }
+  bound_images(rows, result.eliminated);
   count_pivots(rows, result);
   two_by_two_pivots += result.two_by_two;
   delayed_pivots += rows.candidates - result.eliminated;
   return pack(rows, matrix, result.eliminated, base);
+}
+
+template <class Scalar>
+void ScalarWorker<Scalar>::bound_images(const RowsOfFront& rows, Index eliminated) {
+  for (Index k = 0; k < rows.order; ++k) {
+    const auto i = static_cast<std::size_t>(k);
+    image_error_[i] += kUnit * (eliminated * std::fabs(image_[i]) +
+                                (eliminated + rows.order + kImageRoundings) * growth_[i]);
+  }
+}
+
+/// Row `row` of the front is a pivot: its image is complete and may differ from A x by `bound` and the
+/// roundings.
+template <class Scalar>
+void ScalarWorker<Scalar>::check_image(Index row, double bound) {
+  const auto i = static_cast<std::size_t>(row);
+  const Index position = label_[i];
+  const double allowed = 1.001 * (bound + image_error_[i] + run_.probe.product_error[position]);
+  if (!std::isfinite(allowed)) {
+    // Nothing can be told from an image that overflowed.
+    breakdown = true;
+    run_.abandon = true;
+    return;
+  }
+  const Strip<Scalar> image{image_.data(), static_cast<Offset>(row_error_.size())};
+  const Strip<Scalar> product{run_.probe.product.data(), run_.matrix.family->rows};
+  const Scalar difference = load(product, position) - load(image, row);
+  if (!(std::fabs(head(difference)) <= allowed)) {
+    fault_row = fault_row < 0 ? position : std::min(fault_row, position);
+  }
 }
 
 template <class Scalar>
@@ -184,6 +227,7 @@ void ScalarWorker<Scalar>::count_pivots(const RowsOfFront& rows, const ScalarEli
     const double bound = row_error_[i] + gamma * growth_[i] + tiny;
     // A NaN must not pass for a small number, nor give way to one.
     if (!(bound <= largest_row_error)) largest_row_error = std::isnan(bound) ? INFINITY : bound;
+    check_image(k, bound);
   }
   for (std::size_t i = static_cast<std::size_t>(result.eliminated); i < row_error_.size(); ++i) {
     row_error_[i] += gamma * growth_[i] + tiny;
@@ -199,8 +243,9 @@ Status ScalarWorker<Scalar>::pack(const RowsOfFront& rows, const ScalarBlock<Sca
   WaitingBlock& out = run_.waiting[static_cast<std::size_t>(rows.front)];
   out.order = order;
   out.delayed.assign(label_.begin() + eliminated, label_.begin() + rows.candidates);
-  out.values = arena_.push(waiting_doubles(order));  // `destination` itself
-  if (out.values == nullptr) return memory_limit(run_.bytes.load());
+  double* start = arena_.push(waiting_doubles(order));  // `destination` itself
+  if (start == nullptr) return memory_limit(run_.bytes.load());
+  out.place(start, kPlanes);
   const ScalarBlock<Scalar> to{contribution_layout(order), out.values};
   sums_.assign(static_cast<std::size_t>(order), 0);
   if (moves_down(matrix, eliminated, to)) {
@@ -210,13 +255,16 @@ Status ScalarWorker<Scalar>::pack(const RowsOfFront& rows, const ScalarBlock<Sca
     copy_columns(matrix, eliminated, {to.layout, aside.data()}, sums_.data());
     std::memcpy(out.values, aside.data(), static_cast<std::size_t>(aside.size()) * sizeof(double));
   }
-  out.row_error = out.values + kPlanes * to.layout.size();
-  out.row_sums = out.row_error + order;
   const double gamma = handed_on_factor<Scalar>(eliminated);
   for (Index i = 0; i < order; ++i) {
     const double sum = sums_[static_cast<std::size_t>(i)];
     out.row_error[i] = row_error_[static_cast<std::size_t>(eliminated + i)] + gamma * sum;
     out.row_sums[i] = sum;
+    const auto from = static_cast<std::size_t>(eliminated + i);
+    out.image_error[i] = image_error_[from];
+    for (Index plane = 0; plane < kPlanes; ++plane) {
+      out.image[Offset{plane} * order + i] = image_[static_cast<std::size_t>(plane * rows.order) + from];
+    }
   }
   return {};
 }
@@ -229,10 +277,7 @@ Status ScalarWorker<Scalar>::detach(Index front) {
   block.own = Buffer<double>(doubles);
   if (!run_.book(doubles * Offset{sizeof(double)})) return memory_limit(run_.bytes.load());
   std::memcpy(block.own.data(), block.values, static_cast<std::size_t>(doubles) * sizeof(double));
-  const Offset shift = block.row_error - block.values;
-  block.values = block.own.data();
-  block.row_error = block.values + shift;
-  block.row_sums = block.row_error + block.order;
+  block.place(block.own.data(), kPlanes);
   arena_.pop_to(arena_.top() - arena_.used());
   return {};
 }

@@ -10,17 +10,6 @@ namespace {
 
 constexpr double kUnit = 0x1p-53;
 
-Buffer<signed char> draw_signs(Index rows, const CounterRandom& random) {
-  Buffer<signed char> sign(rows);
-  std::uint64_t bits = 0;
-  for (Index i = 0; i < rows; ++i) {
-    if (i % 64 == 0) bits = random.bits(static_cast<std::uint64_t>(i / 64));
-    sign[i] = (bits & 1) != 0 ? 1 : -1;
-    bits >>= 1;
-  }
-  return sign;
-}
-
 /// A sum with the sizes of its partial sums: each addition rounds by at most a unit of its result, and
 /// multiplying by a sign is exact.
 struct TrackedSum {
@@ -33,10 +22,22 @@ struct TrackedSum {
 
 }  // namespace
 
+Buffer<signed char> draw_signs(Index rows, std::uint64_t seed, double offset) {
+  const CounterRandom random(seed, std::bit_cast<std::uint64_t>(offset));
+  Buffer<signed char> sign(rows);
+  std::uint64_t bits = 0;
+  for (Index i = 0; i < rows; ++i) {
+    if (i % 64 == 0) bits = random.bits(static_cast<std::uint64_t>(i / 64));
+    sign[i] = (bits & 1) != 0 ? 1 : -1;
+    bits >>= 1;
+  }
+  return sign;
+}
+
 FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed) {
   const MatrixFamily& family = *matrix.family;
-  FaultProbe probe{draw_signs(family.rows, CounterRandom(seed, std::bit_cast<std::uint64_t>(matrix.offset))),
-                   Buffer<double>(family.rows, 0.0), Buffer<double>(family.rows, 0.0)};
+  FaultProbe probe{draw_signs(family.rows, seed, matrix.offset), Buffer<double>(family.rows, 0.0),
+                   Buffer<double>(family.rows, 0.0)};
   const auto add_to = [&](Index row, double term) {
     probe.product[row] += term;
     probe.product_error[row] += std::fabs(probe.product[row]);

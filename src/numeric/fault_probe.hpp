@@ -22,6 +22,10 @@ struct FaultProbe {
   }
 };
 
+/// x itself: +1 or -1 a row, keyed by `seed` and `offset`; the same bits on every machine. Throws
+/// std::bad_alloc.
+Buffer<signed char> draw_signs(Index rows, std::uint64_t seed, double offset);
+
 /// Signs keyed by `seed` and the matrix's offset: the same bits on every machine. Throws std::bad_alloc.
 /// Cost: one pass over the entries.
 FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed);

@@ -39,6 +39,18 @@ class PrecisionTest(ProgramTest):
         self.assertEqual(double["verdict"], "positive_semidefinite")
         self.assertIn("last-resort", [warning["code"] for warning in double["warnings"]])
 
+    def test_extended_needs_more_memory_and_says_so_beforehand(self):
+        self.run_program("specimen", "solid", "--unknowns", "12000", "--out", "solid")
+        forecast, peak = {}, {}
+        for precision in ("double", "extended"):
+            memory = self.expect(0, "check", "solid/K.mtx", "--precision", precision)["memory_bytes"]
+            forecast[precision], peak[precision] = memory["forecast"], memory["peak"]
+        self.assertGreater(forecast["extended"], 1.3 * forecast["double"])
+        self.assertLessEqual(peak["extended"], 1.05 * forecast["extended"])
+        between = (forecast["double"] + forecast["extended"]) // 2
+        self.expect(0, "check", "solid/K.mtx", "--memory-cap", between)
+        self.expect_failure(4, "memory-cap", "check", "solid/K.mtx", "--memory-cap", between, "--precision", "extended")
+
     def test_other_words(self):
         path = self.matrix("K.mtx", 4, chain(4))
         for value in ("single", "Double", ""):
