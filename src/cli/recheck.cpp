@@ -6,9 +6,11 @@
 #include "cli/certificate_inputs.hpp"
 #include "cli/command.hpp"
 #include "cli/interrupt.hpp"
+#include "cli/other_library.hpp"
 #include "cli/progress_line.hpp"
 #include "cli/request_options.hpp"
 #include "cli/terminal.hpp"
+#include "engine/library_recheck.hpp"
 #include "engine/pipeline.hpp"
 #include "engine/second_path.hpp"
 #include "model/claims.hpp"
@@ -29,7 +31,7 @@ class RecheckCommand : public Command {
  private:
   Status deliver(const RecheckReport& report, std::optional<AnswerFile>& file) const;
 
-  std::optional<std::string> certificate_, json_, root_;
+  std::optional<std::string> certificate_, json_, root_, with_;
   RequestOptions resources_;  ///< threads and memory cap only
   bool quiet_ = false;
 };
@@ -38,13 +40,14 @@ void RecheckCommand::declare(Arguments& arguments) {
   arguments.positional("FILE", certificate_, "FILE", "a certificate written by --certificate", true);
   arguments.text("--root", root_, "DIR", "the folder in which the paths of the certificate are looked up");
   arguments.text("--json", json_, "FILE", "the comparison as JSON; - for standard output, nothing else");
+  arguments.text("--with", with_, "own|mumps", "own: our second path alone; mumps: MUMPS besides, or fail");
   arguments.flag("--quiet", quiet_, "no text on standard output, no progress line");
   arguments.whole("--threads", resources_.threads, "N", "default: every processor available");
   arguments.text("--memory-cap", resources_.memory_cap, "SIZE", "stop before using more, e.g. 8G or 512M");
   arguments.closing(
-      "The digests of the input files are verified first. Then the same question is asked again with "
-      "another\n"
-      "ordering, another seed and plain kernels, and every claim is compared.\n"
+      "The digests of the input files are verified first. Then the same question is asked again with\n"
+      "another ordering, another seed and plain kernels, and every claim is compared. Where the module for\n"
+      "MUMPS is there, that library makes the factorizations that decide the claims once more.\n"
       "Exit code 0: agreed; 1: contradicted; 2: the inputs or the certificate are not what they were; 3: "
       "the\n"
       "second path could not say as much.\n\n"
@@ -64,6 +67,22 @@ Result<Request> second_request(const Request& claimed, const RequestOptions& res
   request.memory_cap_bytes = allowed->memory_cap_bytes;
   if (Status status = validate(request, question); !status.ok()) return status;
   return request;
+}
+
+/// The module to ask: none with "own", an error when "mumps" is asked for and not there.
+Result<std::unique_ptr<OtherLibrary>> library_to_ask(const std::optional<std::string>& with,
+                                                     std::optional<Offset> most_bytes) {
+  if (with && *with != "own" && *with != "mumps") {
+    return Status::bad_usage("bad-with", "--with takes own or mumps, not '" + *with + "'", "--with",
+                             "leave it out");
+  }
+  if (with == "own") return std::unique_ptr<OtherLibrary>();
+  auto library = OtherLibrary::find(most_bytes);
+  if (with && !library) {
+    return Status::bad_usage("no-such-library", "the module for MUMPS is not there", "--with",
+                             "build with libmumps-seq-dev installed, or recheck --with own");
+  }
+  return library;
 }
 
 /// The work above which a second look in extended precision would take too long to be done unasked.
@@ -152,6 +171,8 @@ Result<int> RecheckCommand::run(const Call& call) {
   const Question question = document->outcome.check ? Question::kCheck : Question::kCount;
   const auto request = second_request(document->request, resources_, question);
   if (!request.ok()) return request.status();
+  const auto library = library_to_ask(with_, request->memory_cap_bytes);
+  if (!library.ok()) return library.status();
   use_plain_kernels();
   CancellationToken token;
   const InterruptGuard guard(token);
@@ -166,13 +187,21 @@ Result<int> RecheckCommand::run(const Call& call) {
                     ? compare_with_second_look(document->outcome, *found, *request, context)
                     : compare_counts(document->outcome, *found, *request, context);
   if (!claims.ok()) return claims.status();
+  std::optional<LibraryComparison> compared;
+  if (*library) {
+    auto counts = count_by_library(
+        *request, document->outcome, [&](const TripletMatrix& m) { return (*library)->count_negative(m); },
+        context);
+    if (!counts.ok()) return counts.status();
+    compared = {(*library)->name(), (*library)->version(), std::move(*counts)};
+  }
   line.erase();
 
-  const RecheckReport report{*certificate_,    sha256(bytes->bytes()), document->program_version,
-                             call.arguments,   std::move(*claims),     std::move(document->outcome),
-                             std::move(*found)};
+  const RecheckReport report{*certificate_,     sha256(bytes->bytes()), document->program_version,
+                             call.arguments,    std::move(*claims),     std::move(document->outcome),
+                             std::move(*found), std::move(compared)};
   if (Status status = deliver(report, *json_file); !status.ok()) return status;
-  return code_of(worst(report.claims));
+  return code_of(agreement_of(report));
 }
 
 }  // namespace

@@ -182,6 +182,20 @@ ShiftedMatrix PreparedPencil::second_alone() const {
   return matrix;
 }
 
+TripletMatrix PreparedPencil::formed(double factor, double offset) const {
+  const ShiftedMatrix matrix = combination(factor);
+  TripletMatrix triplets{family_.rows, {}, {}, {}};
+  for (Index j = 0; j < family_.rows; ++j) {
+    for (Offset k = family_.column_start[j]; k < family_.column_start[Offset{j} + 1]; ++k) {
+      const Index i = family_.row[k];
+      triplets.row.push_back(i + 1);
+      triplets.column.push_back(j + 1);
+      triplets.value.push_back(matrix.entry(k, i, j) - (i == j ? offset : 0));
+    }
+  }
+  return triplets;
+}
+
 Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                              Outcome& outcome) {
   return run_on(matrix, {options, nullptr, seed_, bytes_for_factor(), nullptr}, *risk_, pool, outcome);

@@ -8,6 +8,7 @@
 #include "base/threads.hpp"
 #include "engine/model_input.hpp"
 #include "inertia/certify.hpp"
+#include "model/library_count.hpp"
 #include "model/question.hpp"
 #include "sparse/matrix_family.hpp"
 #include "symbolic/analysis.hpp"
@@ -56,6 +57,10 @@ class PreparedPencil {
 
   /// For a diagonal second matrix; `digits`: for every matrix that rounds to it.
   void set_second_bound_from_diagonal(std::optional<int> digits);
+
+  /// The scaled K (with what is added) + factor * second, less offset on its diagonal, each entry as a
+  /// factorization in double forms it; in elimination order.
+  TripletMatrix formed(double factor, double offset) const;
 
   /// The second matrix alone; `digits`: every matrix that rounds to it.
   Result<CertifiedInertia> certify_second(std::optional<int> digits, ThreadPool& pool, Outcome& outcome);

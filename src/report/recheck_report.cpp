@@ -35,7 +35,13 @@ std::string in_words(Agreement agreement) {
   return agreement == Agreement::kNotRepeated ? "not repeated" : name_of(agreement);
 }
 
-std::string headline(Agreement agreement, std::size_t claims) {
+std::string headline(const RecheckReport& report) {
+  const Agreement agreement = agreement_of(report);
+  const std::size_t claims = report.claims.size();
+  if (agreement == Agreement::kNotRepeated && worst(report.claims) == Agreement::kAgreed) {
+    return fmt::format("Not repeated: the second path agrees with the certificate, but {} counts otherwise.",
+                       report.library->name);
+  }
   const std::string all = claims == 1 ? "the claim" : fmt::format("all {} claims", claims);
   switch (agreement) {
     case Agreement::kAgreed:
@@ -85,6 +91,50 @@ void write_claims(Page& page, const std::vector<ClaimComparison>& claims) {
   if (shifts) page.table(rows, 3);
 }
 
+/// "at shift 1.5, offset +4.6e-12: 13, in the certificate 12".
+std::string in_words(const LibraryCount& count) {
+  std::string text =
+      count.shift ? fmt::format("at shift {}, offset ", exact(*count.shift)) : std::string("offset ");
+  text += fmt::format("{:+.3g}: ", count.offset);
+  if (!count.found) return text + fmt::format("nothing ({})", count.why_not);
+  return text + fmt::format("{}, in the certificate {}", grouped(*count.found), grouped(count.claimed));
+}
+
+void write_library(Page& page, const std::optional<LibraryComparison>& library) {
+  if (!library) return;
+  const std::string name = library->name + " " + library->version;
+  if (library->counts.empty()) return page.row("other library", name + ": no factorization to compare with");
+  const auto same = std::count_if(library->counts.begin(), library->counts.end(),
+                                  [](const LibraryCount& count) { return count.found == count.claimed; });
+  page.row("other library",
+           fmt::format("{}: the same number of negative pivots in {} of {}", name, same,
+                       counted(static_cast<Offset>(library->counts.size()), "factorization")));
+  for (const LibraryCount& count : library->counts) {
+    if (count.found != count.claimed) page.row("", in_words(count));
+  }
+  if (agreement_of(*library) == Agreement::kAgreed) return;
+  page.row("",
+           "its counts carry no error bound: an eigenvalue may lie within its rounding of the offset, or one "
+           "of the "
+           "two is wrong");
+}
+
+Json library_of(const std::optional<LibraryComparison>& library) {
+  if (!library) return nullptr;
+  Json counts = Json::array();
+  for (const LibraryCount& count : library->counts) {
+    counts.push_back({{"shift", json_of(count.shift)},
+                      {"offset", json_of(count.offset)},
+                      {"claimed", count.claimed},
+                      {"found", json_of(count.found)},
+                      {"why_not", count.why_not}});
+  }
+  return {{"name", library->name},
+          {"version", library->version},
+          {"result", name_of(agreement_of(*library))},
+          {"counts", counts}};
+}
+
 Json claim_of(const ClaimComparison& claim) {
   return {{"shift", json_of(claim.shift)},
           {"result", name_of(claim.agreement)},
@@ -103,10 +153,15 @@ Json inputs_of(const Outcome& found) {
 
 }  // namespace
 
+Agreement agreement_of(const RecheckReport& report) {
+  const Agreement own = worst(report.claims);
+  return report.library ? std::max(own, agreement_of(*report.library)) : own;
+}
+
 std::string recheck_to_text(const RecheckReport& report) {
-  const Agreement agreement = worst(report.claims);
+  const Agreement agreement = agreement_of(report);
   Page page;
-  page.sentence(headline(agreement, report.claims.size()));
+  page.sentence(headline(report));
   if (agreement == Agreement::kContradicted) write_alarm(page, report);
   page.blank();
   write_claims(page, report.claims);
@@ -115,6 +170,7 @@ std::string recheck_to_text(const RecheckReport& report) {
            fmt::format("{} (made by {} {})", report.certificate_path, program_name(), report.made_by));
   page.row("second path", fmt::format("{} ordering, plain kernels ({}), seed {}", kOrdering,
                                       report.found.host.isa, report.found.seed));
+  write_library(page, report.library);
   write_inputs(page, report.found);
   page.row("time", fmt::format("{}; {} {}", duration_in_words(report.found.timings.total), program_name(),
                                program_version()));
@@ -123,7 +179,7 @@ std::string recheck_to_text(const RecheckReport& report) {
 }
 
 std::string recheck_to_json(const RecheckReport& report) {
-  const Agreement agreement = worst(report.claims);
+  const Agreement agreement = agreement_of(report);
   Json document;
   document["schema_version"] = kSchemaVersion;
   document["program"] = json_parts::program();
@@ -139,6 +195,7 @@ std::string recheck_to_json(const RecheckReport& report) {
   for (const ClaimComparison& claim : report.claims) document["claims"].push_back(claim_of(claim));
   document["second_path"] = {
       {"ordering", kOrdering}, {"kernels", report.found.host.isa}, {"seed", report.found.seed}};
+  document["other_library"] = library_of(report.library);
   document["inputs"] = inputs_of(report.found);
   document["risk"] = {{"claimed", json_of(report.claimed.risk)}, {"found", json_of(report.found.risk)}};
   document["host"] = json_of(report.found.host);

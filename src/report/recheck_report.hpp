@@ -4,7 +4,7 @@
 #include <string>
 #include <vector>
 
-#include "model/claims.hpp"
+#include "model/library_count.hpp"
 #include "stanchion/outcome.hpp"
 
 namespace stanchion {
@@ -16,7 +16,12 @@ struct RecheckReport {
   std::vector<ClaimComparison> claims;
   Outcome claimed;  ///< as far as the certificate tells
   Outcome found;    ///< by the second path
+  std::optional<LibraryComparison> library =
+      std::nullopt;  ///< what another library says, where one was asked
 };
+
+/// The worst of all claims, and of the other library's counts.
+Agreement agreement_of(const RecheckReport& report);
 
 std::string recheck_to_text(const RecheckReport& report);
 

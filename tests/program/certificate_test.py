@@ -4,9 +4,10 @@ import hashlib
 import json
 import pathlib
 import shutil
+import subprocess
 import unittest
 
-from program import ProgramTest, chain, diagonal, read_json
+from program import PROGRAM, ProgramTest, chain, diagonal, read_json
 
 
 def digest(path):
@@ -137,6 +138,47 @@ class AgreedTest(CertificateTest):
         self.recheck(0)
         self.tamper(lambda document: document["claims"][0].update(verdict_for_all_roundings="indefinite"))
         self.assertEqual(self.recheck(1)["result"], "contradicted")
+
+
+def module():
+    """Where the module for MUMPS lies, if it was built."""
+    return next(pathlib.Path(PROGRAM).resolve().parent.parent.glob("lib*/**/stanchion/recheck_mumps.so"), None)
+
+
+class OtherLibraryTest(CertificateTest):
+    @unittest.skipUnless(module(), "the module for MUMPS was not built")
+    def test_mumps_makes_the_factorizations_again(self):
+        stiffness = self.matrix("K.mtx", 60, chain(60, held=2))
+        self.certify(0, "check", stiffness)
+        for arguments in ([], ["--with", "mumps"]):
+            library = self.recheck(0, *arguments)["other_library"]
+            self.assertEqual((library["name"], library["result"]), ("MUMPS", "agreed"))
+            self.assertEqual([(count["claimed"], count["found"]) for count in library["counts"]], [(0, 0)])
+        self.assertIn("the same number of negative pivots in 1 of 1 factorization", self.text)
+        self.certify(0, "count", stiffness, "--at", "0.5,2.5")
+        counts = self.recheck(0)["other_library"]["counts"]
+        self.assertEqual([count["shift"] for count in counts], [0.5, 0.5, 2.5, 2.5])
+        self.assertTrue(all(count["claimed"] == count["found"] > 0 for count in counts))
+
+    def test_it_can_be_left_out(self):
+        self.certify(0, "check", self.matrix("K.mtx", 5, chain(5)))
+        self.assertIsNone(self.recheck(0, "--with", "own")["other_library"])
+        self.assertNotIn("other library", self.text)
+
+    def test_a_word_it_does_not_know(self):
+        self.certify(0, "check", self.matrix("K.mtx", 5, chain(5)))
+        self.expect_failure(2, "bad-with", "recheck", "claim.json", "--with", "luck")
+
+    def test_a_program_without_the_module(self):
+        self.certify(0, "check", self.matrix("K.mtx", 5, chain(5)))
+        alone = shutil.copy(PROGRAM, self.folder / "alone")
+        run = subprocess.run([alone, "recheck", "claim.json"], capture_output=True, text=True, cwd=self.folder, check=False)
+        self.assertEqual((run.returncode, run.stderr), (0, ""))
+        self.assertNotIn("other library", run.stdout)
+        run = subprocess.run([alone, "recheck", "claim.json", "--with", "mumps"], capture_output=True, text=True,
+                             cwd=self.folder, check=False)
+        self.assertEqual((run.returncode, run.stdout), (2, ""))
+        self.assertIn("[no-such-library]", run.stderr)
 
 
 class ContradictedTest(CertificateTest):

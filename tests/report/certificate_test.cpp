@@ -140,6 +140,32 @@ TEST(RecheckReport, SaysAgreedOrNot) {
   const Json json = Json::parse(recheck_to_json(report_with(Agreement::kContradicted)));
   EXPECT_EQ(json["agreed"], false);
   EXPECT_EQ(json["claims"][0]["result"], "contradicted");
+  EXPECT_TRUE(json["other_library"].is_null());
+}
+
+TEST(RecheckReport, AnotherLibraryThatCountsOtherwiseIsSaid) {
+  RecheckReport report = report_with(Agreement::kAgreed);
+  report.library = {"Other", "5.5", {{{}, 4.6e-12, 13, 13, {}}, {1.5, -4.6e-12, 12, 12, {}}}};
+  EXPECT_EQ(agreement_of(report), Agreement::kAgreed);
+  EXPECT_NE(recheck_to_text(report).find("Other 5.5: the same number of negative pivots in 2 of 2"),
+            std::string::npos);
+  report.library->counts[1].found = 14;
+  EXPECT_EQ(agreement_of(report), Agreement::kNotRepeated);
+  const std::string text = recheck_to_text(report);
+  EXPECT_EQ(
+      text.rfind("Not repeated: the second path agrees with the certificate, but Other counts otherwise.", 0),
+      0U);
+  EXPECT_NE(text.find("at shift 1.5, offset -4.6e-12: 14, in the certificate 12"), std::string::npos) << text;
+  const Json json = Json::parse(recheck_to_json(report));
+  EXPECT_EQ(json["result"], "not_repeated");
+  EXPECT_EQ(json["claims"][0]["result"], "agreed");
+  EXPECT_EQ(json["other_library"]["result"], "not_repeated");
+  EXPECT_EQ(json["other_library"]["counts"][1]["found"], 14);
+  report.library->counts[1] = {{}, 0, 12, {}, "it finds the matrix singular"};
+  EXPECT_NE(recheck_to_text(report).find("offset +0: nothing (it finds the matrix singular)"),
+            std::string::npos);
+  report.claims[0].agreement = Agreement::kContradicted;
+  EXPECT_EQ(agreement_of(report), Agreement::kContradicted);
 }
 
 }  // namespace
