@@ -7,6 +7,7 @@
 #include <string>
 #include <vector>
 
+#include "stanchion/located.hpp"
 #include "stanchion/status.hpp"
 #include "stanchion/types.hpp"
 
@@ -273,6 +274,7 @@ struct Outcome {
   std::optional<AuditOutcome> audit;
   std::optional<PathOutcome> path;
   std::optional<ForecastOutcome> forecast;
+  std::optional<LocateOutcome> located;  ///< beside `check`: locate, or check --locate
 };
 
 }  // namespace stanchion

@@ -87,6 +87,13 @@ struct AuditRequest {
   bool find_missing = false;
 };
 
+/// What `locate` and `check --locate` look for.
+struct LocateOptions {
+  Index most = 12;             ///< directions shown, at most
+  double weak_below = 1e-7;    ///< energy ratio below which a positive direction counts as weak
+  double attention_digits = 8, alarm_digits = 12;  ///< levels of the local accuracy, in digits lost
+};
+
 struct Request {
   InputRequest input;
   Pencil pencil = Pencil::kStiffness;
@@ -103,6 +110,8 @@ struct Request {
   std::uint64_t seed = 1;
   Precision precision = Precision::kDouble;
   bool want_witness = false;  ///< check: also look for x with x^T A x < 0 beyond its rounding
+  bool want_location = false;  ///< check: also where the zero, negative and weak directions are
+  LocateOptions locate;
   bool second_path = false;   ///< another ordering and the plain kernels, to repeat a claim independently
 };
 

@@ -35,6 +35,10 @@ struct Listener {
 /// six otherwise.
 Result<Outcome> check(const Request& request, const Listener& listener = {});
 
+/// As check, and where and why: `located` is set beside `check` unless the inertia is unresolved. Keeps the factor. Errors
+/// as above. Cost: one or two factorizations and some ten solves with eight vectors.
+Result<Outcome> locate(const Request& request, const Listener& listener = {});
+
 /// Counts at every shift of `request`, in the order asked; `pencil` must agree with the matrices named. The
 /// outcome's `count` is set. Errors as above. Cost: one to six factorizations a shift, one analysis for all.
 Result<Outcome> count(const Request& request, const Listener& listener = {});

@@ -42,6 +42,10 @@ Result<Outcome> count(const Request& request, const Listener& listener) {
   return ask(Question::kCount, run_count, request, listener);
 }
 
+Result<Outcome> locate(const Request& request, const Listener& listener) {
+  return ask(Question::kLocate, run_locate, request, listener);
+}
+
 Result<Outcome> forecast(const Request& request, const Listener& listener) {
   return ask(Question::kForecast, run_forecast, request, listener);
 }

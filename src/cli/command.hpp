@@ -26,6 +26,7 @@ class Command {
 
 std::unique_ptr<Command> make_check_command();
 std::unique_ptr<Command> make_count_command();
+std::unique_ptr<Command> make_locate_command();
 std::unique_ptr<Command> make_forecast_command();
 std::unique_ptr<Command> make_specimen_command();
 std::unique_ptr<Command> make_convert_command();

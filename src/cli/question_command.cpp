@@ -21,11 +21,13 @@ namespace {
 
 void declare_output_options(Arguments& arguments, OutputOptions& options, Question question) {
   arguments.group("Output");
-  arguments.text("--expect", options.expectation, "WHAT",
-                 "positive-definite, zero:N or negative:N; exit 1 if not");
+  if (question != Question::kLocate) {
+    arguments.text("--expect", options.expectation, "WHAT",
+                   "positive-definite, zero:N or negative:N; exit 1 if not");
+  }
   arguments.text("--json", options.json, "FILE",
                  "the whole answer as JSON; - for standard output, nothing else");
-  if (question != Question::kForecast) {
+  if (question != Question::kForecast && question != Question::kLocate) {
     arguments.text("--certificate", options.certificate, "FILE",
                    "what was claimed and how, for `stanchion recheck FILE`");
   }

@@ -14,7 +14,9 @@ void declare_matrices(Arguments& arguments, RequestOptions& options, Question qu
   arguments.positional("K", options.stiffness, "FILE",
                        "the stiffness matrix; its format is found from its content", true);
   arguments.group("Matrices");
-  if (question != Question::kCheck) {
+  if (question == Question::kLocate) {
+    arguments.text("--mass", options.mass, "FILE", "mass M, matrix or diagonal: its total and centre are stated");
+  } else if (question != Question::kCheck) {
     arguments.text("--geometric", options.geometric, "FILE", "geometric stiffness G: the pencil K + f G");
     arguments.text("--mass", options.mass, "FILE", "mass M, matrix or diagonal: the pencil K - s M");
     arguments.text("--load-sign", options.load_sign, "plus|minus",
@@ -55,6 +57,19 @@ void declare_numbers(Arguments& arguments, RequestOptions& options, Question que
   arguments.group("Resources");
   arguments.whole("--threads", options.threads, "N", "default: every processor available");
   arguments.text("--memory-cap", options.memory_cap, "SIZE", "stop before using more, e.g. 8G or 512M");
+}
+
+void declare_location(Arguments& arguments, RequestOptions& options, Question question) {
+  arguments.group("Location");
+  if (question == Question::kCheck) {
+    arguments.flag("--locate", options.locate, "also where and why: nodes and dofs of zero, negative, weak directions");
+  }
+  arguments.whole("--most", options.most, "N", "entries shown at most (default 12)");
+  arguments.real("--weak-below", options.weak_below, "r",
+                 "energy ratio below which a positive direction counts as weak (default 1e-7)");
+  arguments.real("--attention-digits", options.attention_digits, "d",
+                 "local accuracy: digits lost that deserve attention (default 8)");
+  arguments.real("--alarm-digits", options.alarm_digits, "d", "digits lost that leave little (default 12)");
 }
 
 /// FILE:factor, split at the last colon so that paths may hold colons.
@@ -100,6 +115,7 @@ Status fill_numbers(const RequestOptions& options, Request& request) {
   for (const Status& status : {narrow("--base", options.base, 0, request.input.base),
                                narrow("--rows", options.rows, 1, request.input.rows),
                                narrow("--digits", options.digits, 1, request.digits),
+                               narrow("--most", options.most, 1, request.locate.most),
                                narrow("--threads", options.threads, 1, request.threads)}) {
     if (!status.ok()) return status;
   }
@@ -118,6 +134,10 @@ Status fill_numbers(const RequestOptions& options, Request& request) {
     request.precision = *options.precision == "extended" ? Precision::kExtended : Precision::kDouble;
   }
   request.resolution = options.resolution;
+  request.want_location = options.locate;
+  if (options.weak_below) request.locate.weak_below = *options.weak_below;
+  if (options.attention_digits) request.locate.attention_digits = *options.attention_digits;
+  if (options.alarm_digits) request.locate.alarm_digits = *options.alarm_digits;
   if (options.risk) request.risk = *options.risk;
   if (options.memory_cap) {
     const auto bytes = parse_byte_size(*options.memory_cap);
@@ -170,6 +190,7 @@ void declare_request_options(Arguments& arguments, RequestOptions& options, Ques
                     "where to count (may be repeated; negative ones too)");
   }
   declare_model_files(arguments, options);
+  if (question == Question::kCheck || question == Question::kLocate) declare_location(arguments, options, question);
   declare_numbers(arguments, options, question);
 }
 

@@ -17,9 +17,9 @@ struct RequestOptions {
   std::optional<std::string> stiffness, geometric, mass, dofs, nodes, axes, fix, multipliers;
   std::optional<std::string> load_sign, memory_cap, precision;
   std::vector<std::string> added, shifts;
-  std::optional<std::int64_t> base, rows, digits, threads, seed;
-  std::optional<double> resolution, risk;
-  bool symmetric_part = false, strike_held = false;
+  std::optional<std::int64_t> base, rows, digits, threads, seed, most;
+  std::optional<double> resolution, risk, weak_below, attention_digits, alarm_digits;
+  bool symmetric_part = false, strike_held = false, locate = false;
 };
 
 /// Declares the options that `question` takes; `options` must outlive the parse.

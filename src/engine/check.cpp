@@ -3,8 +3,10 @@
 
 #include "base/clock.hpp"
 #include "engine/constraints.hpp"
+#include "engine/location.hpp"
 #include "engine/prepared_pencil.hpp"
 #include "extended/factorize.hpp"
+#include "model/names.hpp"
 
 namespace stanchion {
 namespace {
@@ -28,6 +30,9 @@ void offer_last_resort(const PreparedPencil& pencil, const Request& request, Out
 
 Result<Outcome> check_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
                             Outcome outcome) {
+  const bool locate = request.want_location;
+  LocationFacts facts;
+  if (locate) facts = collect_location_facts(model, request, outcome);
   const std::vector<Index> multipliers = model.multipliers, original = model.original;
   ConstraintRank rank;
   if (!multipliers.empty()) {
@@ -38,7 +43,8 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
   auto pencil = PreparedPencil::make(model, false, request, context, pool, outcome);
   if (!pencil.ok()) return pencil.status();
   const bool definite_first = multipliers.empty();
-  auto certified = pencil->certify(0, definite_first, 0, pool, outcome);
+  auto certified = locate ? certify_and_locate(*pencil, facts, request, rank.least, pool, outcome)
+                          : pencil->certify(0, definite_first, 0, pool, outcome);
   if (!certified.ok()) return certified.status();
   CheckOutcome check;
   check.inertia = certified->inertia;
@@ -73,15 +79,30 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
 
 }  // namespace
 
-Result<Outcome> run_check(const Request& request, const RunContext& context) {
+namespace {
+
+Result<Outcome> check_or_locate(const Request& request, Question question, const RunContext& context) {
   const Stopwatch watch;
   ThreadPool pool(threads_of(request));
-  Outcome outcome = begin_outcome("check", request, Question::kCheck);
-  auto model = read_model(request, context, pool, outcome);
+  Outcome outcome = begin_outcome(name_of(question), request, question);
+  auto model = request.want_location ? read_model_to_locate(request, context, pool, outcome)
+                                     : read_model(request, context, pool, outcome);
   if (!model.ok()) return model.status();
   auto result = check_model(std::move(*model), request, context, pool, std::move(outcome));
   if (result.ok()) finish_outcome(*result, watch.seconds());
   return result;
+}
+
+}  // namespace
+
+Result<Outcome> run_check(const Request& request, const RunContext& context) {
+  return check_or_locate(request, Question::kCheck, context);
+}
+
+Result<Outcome> run_locate(const Request& request, const RunContext& context) {
+  Request locating = request;
+  locating.want_location = true;
+  return check_or_locate(locating, Question::kLocate, context);
 }
 
 }  // namespace stanchion

@@ -19,6 +19,10 @@ struct RunContext {
 /// if not, its inertia at the resolution, with the certificate of two offset factorizations.
 Result<Outcome> run_check(const Request& request, const RunContext& context);
 
+/// The same, and where and why: the outcome's `located` is set beside `check`, unless the inertia is unresolved. Unusable
+/// dof maps, node tables and axes are left out with a warning. Resource limit when the factor cannot be kept.
+Result<Outcome> run_locate(const Request& request, const RunContext& context);
+
 /// Counts at every shift of `request`, in the order asked.
 Result<Outcome> run_count(const Request& request, const RunContext& context);
 

@@ -279,6 +279,33 @@ Result<CertifiedInertia> PreparedPencil::certify(double factor, bool definite_fi
   return run(combination(factor), options, pool, outcome);
 }
 
+Result<CertifiedInertia> PreparedPencil::certify_keeping(std::optional<double> resolution, double data_error,
+                                                         std::optional<KeptFactorization>& kept, ThreadPool& pool,
+                                                         Outcome& outcome) {
+  const Offset needed = analysis_.forecast.peak_bytes_solve;
+  if (needed > bytes_for_factor()) {
+    return Status::resource_limit("memory-cap",
+                                  "keeping the factor, which locating needs, is forecast to take " + mebibytes(needed) +
+                                      " beside what is in use, more than there is",
+                                  outcome.inputs.empty() ? "" : outcome.inputs.front().path,
+                                  "raise --memory-cap, use a larger machine, or ask check without --locate");
+  }
+  OffsetOptions options;
+  options.resolution = resolution ? resolution : resolution_;
+  options.data_error = data_error;
+  options.sharpen = false;
+  options.keep = &kept;
+  options.factor = factor_options_;
+  auto certified = certify_by_offsets(analysis_, combination(0), options, pool);
+  if (!certified.ok()) return certified.status();
+  outcome.memory.forecast = std::max(outcome.memory.forecast, resident_before_ + needed);
+  outcome.timings.factor += certified->seconds;
+  outcome.work.factorizations += certified->factorizations;
+  outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified->delayed_pivots);
+  outcome.work.two_by_two_pivots = std::max(outcome.work.two_by_two_pivots, certified->two_by_two_pivots);
+  return certified;
+}
+
 Result<CertifiedInertia> PreparedPencil::certify_second(std::optional<int> digits, ThreadPool& pool,
                                                         Outcome& outcome) {
   ShiftedMatrix matrix = second_alone();

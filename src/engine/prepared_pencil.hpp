@@ -46,6 +46,12 @@ class PreparedPencil {
   /// ||S K S|| over ||S (second) S||, in the infinity norm: the factor at which the two are of one size.
   double size_ratio() const;
 
+  /// As certify(0, ...), by two offsets in double precision, leaving the factor of A_s - cI in `kept`. `resolution`: the
+  /// offset c to use; absent: chosen, and not sharpened where zeros are left. Resource limit "memory-cap" when the factor
+  /// cannot be kept.
+  Result<CertifiedInertia> certify_keeping(std::optional<double> resolution, double data_error,
+                                           std::optional<KeptFactorization>& kept, ThreadPool& pool, Outcome& outcome);
+
   /// A vector x with x^T A x < 0 beyond its rounding, A = K with what is added; nothing when none is found. Its entries
   /// are placed by `original` (see ModelInput) among `file_rows` equations. Keeps a factor for the while.
   Result<std::optional<Witness>> find_witness(const std::vector<Index>& original, Index file_rows, ThreadPool& pool,
@@ -73,6 +79,7 @@ class PreparedPencil {
 
   const Analysis& analysis() const { return analysis_; }
   bool has_second() const { return has_second_; }
+  std::uint64_t seed() const { return seed_; }
 
  private:
   ShiftedMatrix second_alone() const;

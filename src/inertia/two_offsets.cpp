@@ -64,6 +64,9 @@ class OffsetScheme {
     shifted.offset = offset;
     FactorOptions factor_options = options_.factor;
     factor_options.definite = definite;
+    const bool keep = options_.keep != nullptr && offset > 0 && !options_.extended;
+    if (keep) options_.keep->reset();  // the memory of the one before
+    factor_options.keep_factor = keep;
     auto result = options_.extended ? factorize_extended(analysis_, shifted, factor_options, pool_)
                                     : factorize(analysis_, shifted, factor_options, pool_);
     if (!result.ok()) return result.status();
@@ -79,6 +82,7 @@ class OffsetScheme {
       found_.certificate.runs.push_back({offset, run.negative, run.bound});
       found_.certificate.error_bound = std::max(found_.certificate.error_bound.value_or(0), run.bound);
     }
+    if (keep && !run.stopped && !run.breakdown) options_.keep->emplace(KeptFactorization{offset, std::move(*result)});
     return run;
   }
 
@@ -128,6 +132,10 @@ class OffsetScheme {
         offset = kMargin * below->bound;
         continue;
       }
+      if (!below->breakdown && below->negative == 0 && offset > below->bound) {  // nothing below: definite
+        settle(rows_, 0, offset, below->bound);
+        return found_;
+      }
       auto above = factor(-offset, false);
       if (!above.ok()) return above.status();
       const double bound = std::max(below->bound, above->bound);
@@ -152,7 +160,7 @@ class OffsetScheme {
       }
       settle(rows_ - below->negative, above->negative, offset, below->bound);
       have_answer = true;
-      const bool worth_sharpening = found_.inertia.zero > 0 && !options_.resolution && offset > kSharpenAbove * bound;
+      const bool worth_sharpening = options_.sharpen && found_.inertia.zero > 0 && !options_.resolution && offset > kSharpenAbove * bound;
       if (!worth_sharpening) return found_;
       offset = kMargin * bound;
     }

@@ -9,12 +9,20 @@
 
 namespace stanchion {
 
+/// The factorization of A_s - offset I that a run left behind, factor and all.
+struct KeptFactorization {
+  double offset = 0;
+  Factorization factorization;
+};
+
 struct OffsetOptions {
   bool definite_first = false;       ///< expect a positive definite matrix: try without pivoting, stop early
   bool definite_only = false;        ///< with definite_first: give up (level none) when that attempt fails
   std::optional<double> resolution;  ///< the offset c itself; absent: chosen, retried larger or smaller
   bool extended = false;             ///< factor in double-double: slow, for what double cannot tell apart
   double data_error = 0;             ///< bound on the 2-norm of what the scaled entries themselves may be off
+  bool sharpen = true;               ///< where zeros are left, try again with a smaller offset
+  std::optional<KeptFactorization>* keep = nullptr;  ///< takes the last factorization at a positive offset
   FactorOptions factor;              ///< threshold, cap, progress, cancellation; `definite` is set here
 };
 

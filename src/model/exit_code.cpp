@@ -26,6 +26,16 @@ ExitCode code_of_check(const CheckOutcome& check) {
   return *check.verdict_for_digits == Verdict::kUnresolved ? kExitUnresolved : kExitNotGood;
 }
 
+/// Good when nothing is there to be named.
+ExitCode code_of_location(const Outcome& outcome) {
+  if (!outcome.located || code_of_check(*outcome.check) == kExitUnresolved) return kExitUnresolved;
+  const auto& directions = outcome.located->directions;
+  const bool open = std::any_of(directions.begin(), directions.end(),
+                                [](const Direction& direction) { return direction.cause == Cause::kUnresolved; });
+  if (open) return kExitUnresolved;
+  return directions.empty() && outcome.located->not_located == 0 ? kExitGood : kExitNotGood;
+}
+
 ExitCode code_of_count(const CountOutcome& count) {
   const bool all = std::all_of(count.counts.begin(), count.counts.end(), [](const ShiftCount& shift) {
     return shift.below.has_value() && shift.level != Level::kNone;
@@ -58,7 +68,7 @@ ExitCode exit_code(const Outcome& outcome, const Judgement& judgement) {
     if (outcome.count) return from_comparison(compare(*judgement.expectation, *outcome.count));
   }
   ExitCode code = kExitGood;
-  if (outcome.check) code = code_of_check(*outcome.check);
+  if (outcome.check) code = outcome.command == "locate" ? code_of_location(outcome) : code_of_check(*outcome.check);
   if (outcome.count) code = code_of_count(*outcome.count);
   return code == kExitGood && judgement.symmetric_part ? kExitNotGood : code;
 }

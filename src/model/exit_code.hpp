@@ -28,7 +28,7 @@ struct Judgement {
 };
 
 /// check: good only when positive definite (or as expected). count, forecast: good when all is answered (or
-/// as expected). Unresolved as soon as an asked statement has no certificate.
+/// as expected). locate: good when no cause is found; unresolved when a direction's sign or membership is. Unresolved as soon as an asked statement has no certificate.
 ExitCode exit_code(const Outcome& outcome, const Judgement& judgement);
 
 }  // namespace stanchion

@@ -69,6 +69,10 @@ Result<Expectation> parse_expectation(std::string_view text) {
 }
 
 Status check_applicable(const Expectation& expectation, Question question) {
+  if (question == Question::kLocate) {
+    return Status::bad_usage("expectation-not-applicable", "locate tells what it finds, and its exit code whether",
+                             "--expect", "leave --expect out, or use it with check --locate");
+  }
   if (question == Question::kForecast) {
     return Status::bad_usage("expectation-not-applicable", "a forecast gives no verdict to compare",
                              "--expect", "leave --expect out, or use it with check or count");

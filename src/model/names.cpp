@@ -44,10 +44,40 @@ const char* name_of(Question question) {
       return "bracket";
     case Question::kAudit:
       return "audit";
+    case Question::kLocate:
+      return "locate";
     case Question::kForecast:
       break;
   }
   return "forecast";
+}
+
+const char* name_of(Cause cause) {
+  switch (cause) {
+    case Cause::kLoosePart:
+      return "loose_part";
+    case Cause::kMechanism:
+      return "mechanism";
+    case Cause::kUnattachedDof:
+      return "unattached_dof";
+    case Cause::kMissingRotation:
+      return "missing_rotational_stiffness";
+    case Cause::kNegativeSpring:
+      return "negative_spring";
+    case Cause::kNegativePatch:
+      return "negative_patch";
+    case Cause::kUnstableWhole:
+      return "unstable_as_a_whole";
+    case Cause::kRedundantConstraint:
+      return "redundant_constraint";
+    case Cause::kNearMechanism:
+      return "near_mechanism";
+    case Cause::kOverStiffCoupling:
+      return "over_stiff_coupling";
+    case Cause::kUnresolved:
+      break;
+  }
+  return "unresolved";
 }
 
 const char* name_of(Pencil pencil) {

@@ -16,6 +16,9 @@ const char* name_of(Level level);
 /// "check", "count" or "forecast".
 const char* name_of(Question question);
 
+/// "loose_part", "mechanism", ..., "unresolved".
+const char* name_of(Cause cause);
+
 /// "stiffness", "geometric" or "mass".
 const char* name_of(Pencil pencil);
 

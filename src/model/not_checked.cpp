@@ -40,18 +40,24 @@ constexpr const char* kForecastOnly =
 
 }  // namespace
 
+constexpr const char* kCauses =
+    "Causes: they are read from shapes and entries of the matrix alone. Whether the remedy named fits the structure is "
+    "for its engineer to say.";
+
 std::vector<std::string> not_checked(const Request& request, Question question) {
   if (question == Question::kForecast) return {kForecastOnly};
   std::vector<std::string> sentences;
+  const bool one_matrix = request.pencil == Pencil::kStiffness || question == Question::kLocate;
   if (request.pencil == Pencil::kGeometric) {
     sentences.emplace_back(kLinearPath);
-  } else if (request.pencil == Pencil::kStiffness) {
+  } else if (one_matrix) {
     sentences.emplace_back(request.input.added.empty() ? kNoLoad : kOnlyAddedLoad);
   }
   if (request.input.symmetric_part) sentences.emplace_back(kSymmetricPart);
   if (question == Question::kCount && request.pencil == Pencil::kStiffness)
     sentences.emplace_back(kMixedUnits);
-  if (question == Question::kCheck) sentences.emplace_back(kResolution);
+  if (question == Question::kCheck || question == Question::kLocate) sentences.emplace_back(kResolution);
+  if (question == Question::kLocate || request.want_location) sentences.emplace_back(kCauses);
   if (!request.digits) sentences.emplace_back(kExactNumbers);
   for (const char* sentence : {kModel, kOutside, kPractice}) sentences.emplace_back(sentence);
   return sentences;

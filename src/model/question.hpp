@@ -3,6 +3,6 @@
 
 namespace stanchion {
 
-enum class Question { kCheck, kCount, kSweep, kBracket, kAudit, kForecast };
+enum class Question { kCheck, kCount, kSweep, kBracket, kAudit, kLocate, kForecast };
 
 }  // namespace stanchion

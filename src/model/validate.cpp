@@ -37,6 +37,13 @@ Status validate_matrices(const Request& request, Question question) {
     return contradiction(input.geometric ? "--geometric" : "--mass", "check judges one matrix, with no shift",
                          "use count with --at, or --add FILE:factor for a fixed load");
   }
+  if (question == Question::kLocate && named == Pencil::kGeometric) {
+    return contradiction("--geometric", "locate judges one matrix", "use --add FILE:factor for a fixed load");
+  }
+  if ((question == Question::kLocate || request.want_location) && request.precision == Precision::kExtended) {
+    return contradiction("--precision", "causes are located with a factor in double precision",
+                         "leave --precision out, or ask check without --locate");
+  }
   if (input.load_sign_minus && !input.geometric) {
     return contradiction("--load-sign", "there is no geometric stiffness whose sign it could give",
                          "name the matrix with --geometric, or leave --load-sign out");
@@ -97,6 +104,21 @@ Status validate_numbers(const Request& request) {
     return out_of_range("--threads",
                         fmt::format("{} threads are not between 1 and {}", request.threads, kMostThreads),
                         "leave --threads out to use every processor available");
+  }
+  const LocateOptions& locate = request.locate;
+  if (locate.most < 1 || locate.most > 1000) {
+    return out_of_range("--most", fmt::format("{} directions are not between 1 and 1000", locate.most),
+                        "leave --most out for 12");
+  }
+  if (!(locate.weak_below >= 0 && locate.weak_below < 1)) {
+    return out_of_range("--weak-below", fmt::format("{} is no energy ratio from 0 to 1", locate.weak_below),
+                        "give the ratio below which a direction counts as weak, e.g. --weak-below 1e-7");
+  }
+  if (!(locate.attention_digits > 0 && locate.attention_digits < locate.alarm_digits && locate.alarm_digits <= 16)) {
+    return out_of_range("--attention-digits, --alarm-digits",
+                        fmt::format("{} and {} are no two rising numbers of digits up to 16", locate.attention_digits,
+                                    locate.alarm_digits),
+                        "leave them out for 8 and 12");
   }
   if (request.memory_cap_bytes && *request.memory_cap_bytes < 1) {
     return out_of_range("--memory-cap", "the cap must be positive", "write e.g. --memory-cap 8G");

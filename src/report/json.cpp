@@ -1,5 +1,6 @@
 #include "report/json.hpp"
 
+#include "model/names.hpp"
 #include "report/json_parts.hpp"
 
 namespace stanchion {
@@ -24,6 +25,86 @@ Json witness_of(const Witness& witness) {
           {"error_bound", json_of(witness.error_bound)},
           {"path", json_of(witness.path)},
           {"x", witness.path ? Json(nullptr) : json_of(witness.x)}};
+}
+
+Json json_of(const DofShare& share) {
+  return {{"node", share.node ? Json(*share.node) : Json(nullptr)},
+          {"dof", share.dof},
+          {"equation", share.equation},
+          {"share", json_of(share.share)}};
+}
+
+/// A list of lists or records, whatever their kind.
+template <class Items, class Make>
+Json list_of(const Items& items, const Make& make) {
+  Json list = Json::array();
+  for (const auto& item : items) list.push_back(make(item));
+  return list;
+}
+
+Json shares_of(const std::vector<DofShare>& shares) {
+  return list_of(shares, [](const DofShare& share) { return json_of(share); });
+}
+
+Json json_of(const Direction& direction) {
+  return {{"kind", name_of(direction.cause)},
+          {"sign", direction.sign},
+          {"count", direction.count},
+          {"energy", json_of(direction.energy)},
+          {"residual", json_of(direction.residual)},
+          {"nodes", shares_of(direction.nodes)},
+          {"moving_nodes", direction.moving_nodes},
+          {"moving_rows", direction.moving_rows},
+          {"component", json_of(direction.component)},
+          {"motions", json_of(direction.motions)},
+          {"explanation", direction.explanation},
+          {"remedy", direction.remedy}};
+}
+
+template <std::size_t n>
+Json numbers_of(const std::array<double, n>& numbers) {
+  return list_of(numbers, [](double number) { return json_of(number); });
+}
+
+Json json_of(const ComponentRecord& part) {
+  return {{"rows", part.rows},
+          {"nodes", part.nodes},
+          {"nullity", part.nullity},
+          {"rigid_energy", part.rigid_energy ? numbers_of(*part.rigid_energy) : Json(nullptr)}};
+}
+
+Json json_of(const LocalAccuracy& accuracy) {
+  return {{"method", accuracy.method},
+          {"vectors", accuracy.vectors},
+          {"attention", json_of(accuracy.attention)},
+          {"alarm", json_of(accuracy.alarm)},
+          {"typical", json_of(accuracy.typical)},
+          {"largest", json_of(accuracy.largest)},
+          {"histogram", list_of(accuracy.histogram,
+                                [](const auto& bin) { return Json{{"from", bin.first}, {"equations", bin.second}}; })},
+          {"worst", list_of(accuracy.worst, [](const DofShare& worst) {
+             Json entry = json_of(worst);
+             entry["digits"] = entry["share"];
+             entry.erase("share");
+             return entry;
+           })}};
+}
+
+void add_location(Json& document, const LocateOutcome& located) {
+  document["directions"] = list_of(located.directions, [](const Direction& d) { return json_of(d); });
+  document["components"] = list_of(located.components, [](const ComponentRecord& part) { return json_of(part); });
+  document["location"] = {{"negative", located.negative},
+                          {"zero", located.zero},
+                          {"not_located", located.not_located},
+                          {"weak_below", json_of(located.weak_below)},
+                          {"components_left_out", located.components_left_out},
+                          {"seconds", json_of(located.seconds)}};
+  document["local_accuracy"] = located.accuracy ? json_of(*located.accuracy) : Json(nullptr);
+  document["mass"] = nullptr;
+  if (located.mass) {
+    document["mass"] = {{"total", numbers_of(located.mass->mass)},
+                        {"centre", located.mass->centre ? numbers_of(*located.mass->centre) : Json(nullptr)}};
+  }
 }
 
 Json json_of(const InputRecord& input) {
@@ -90,6 +171,11 @@ void add_answer(Json& document, const Outcome& outcome) {
   if (outcome.count) {
     document["counts"] = json_of(outcome.count->counts);
     document["sentences"] = json_of(outcome.count->sentences);
+  }
+  if (outcome.located) {
+    add_location(document, *outcome.located);
+  } else if (outcome.command == "locate") {
+    add_location(document, {});  // nothing is certain: nothing is named
   }
   if (outcome.forecast) document["forecast"] = json_of(*outcome.forecast);
 }

@@ -110,6 +110,7 @@ std::string to_text(const Outcome& outcome) {
   Page page;
   write_heading(page, outcome);
   if (outcome.check) write_check(page, outcome);
+  if (outcome.located) write_locate(page, outcome);
   if (outcome.count) write_count(page, outcome);
   if (outcome.forecast) write_forecast(page, outcome);
   page.blank();

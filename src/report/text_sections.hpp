@@ -15,6 +15,9 @@ void write_check(Page& page, const Outcome& outcome);
 /// What was counted, and one row a shift.
 void write_count(Page& page, const Outcome& outcome);
 
+/// Causes with ranked nodes, explanation and remedy; local accuracy; parts and mass.
+void write_locate(Page& page, const Outcome& outcome);
+
 void write_forecast(Page& page, const Outcome& outcome);
 
 /// The matrices that went in, one row each.

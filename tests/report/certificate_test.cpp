@@ -41,7 +41,7 @@ CertificateDocument read_back(const CertificateDocument& document) {
 
 TEST(CertificateJson, WhatIsClaimedReadsBack) {
   for (const auto& [name, outcome] : samples::all()) {
-    if (outcome.forecast) continue;
+    if (outcome.forecast || outcome.command == "locate") continue;
     const Outcome back = read_back(certificate_of(outcome)).outcome;
     SCOPED_TRACE(name);
     EXPECT_EQ(back.command, outcome.command);

@@ -146,12 +146,78 @@ Outcome forecast() {
   return outcome;
 }
 
+Outcome located() {
+  Outcome outcome = checked(Verdict::kIndefinite, {1, 8, 29787, 0},
+                            proved_offsets({{1e-11, 9, 3.4e-13}, {-1e-11, 1, 3.1e-13}}));
+  outcome.command = "locate";
+  LocateOutcome& located = outcome.located.emplace();
+  located.negative = 1;
+  located.zero = 8;
+  located.not_located = 0;
+  located.weak_below = 1e-7;
+  Direction loose;
+  loose.cause = Cause::kLoosePart;
+  loose.count = 6;
+  loose.energy = -2e-17;
+  loose.residual = 3e-16;
+  loose.nodes = {{4411, "ux", 120, 0.25}, {4412, "uz", 125, 0.125}};
+  loose.moving_rows = 24;
+  loose.moving_nodes = 4;
+  loose.component = 1;
+  loose.motions = {"translation x", "rotation about z"};
+  loose.explanation = "The 4 nodes around node 4411, ux: this part is not held.";
+  loose.remedy = "Connect the part.";
+  Direction spring;
+  spring.cause = Cause::kNegativeSpring;
+  spring.sign = -1;
+  spring.energy = -0.5;
+  spring.residual = 1e-6;
+  spring.nodes = {{std::nullopt, "equation 17", 17, 0.75}};
+  spring.moving_rows = 1;
+  spring.moving_nodes = 1;
+  spring.component = 0;
+  spring.explanation = "A spring pushes along.";
+  spring.remedy = "Check its sign.";
+  Direction rest;
+  rest.count = 2;
+  rest.explanation = "No cause is named.";
+  rest.remedy = "Ask again.";
+  located.directions = {spring, loose, rest};
+  located.components = {{29772, 4962, 2, std::array<double, 6>{0.5, 0.5, 0.25, 1, 1, 1}}, {24, 4, 6, {}}};
+  located.mass = MassTotals{{1000, 1000, 900}, std::array<double, 3>{1, 2, 0.5}};
+  located.seconds = 0.5;
+  return outcome;
+}
+
+Outcome nothing_located() {
+  Outcome outcome = definite();
+  LocateOutcome& located = outcome.located.emplace();
+  located.weak_below = 1e-7;
+  located.components = {{29796, 4966, 0, {}}};
+  located.mass = MassTotals{{1000, 1000, 900}, {}};
+  LocalAccuracy& accuracy = located.accuracy.emplace();
+  accuracy.method = "estimate from Gaussian vectors";
+  accuracy.vectors = 32;
+  accuracy.typical = 1.5;
+  accuracy.largest = 8.25;
+  accuracy.histogram = {{0, 20000}, {0.5, 9796}};
+  accuracy.worst = {{12, "rz", 60, 8.25}, {std::nullopt, "equation 3", 3, 7}};
+  return outcome;
+}
+
+Outcome location_unresolved() {
+  Outcome outcome = unresolved();
+  outcome.command = "locate";
+  return outcome;
+}
+
 std::vector<std::pair<std::string, Outcome>> all() {
   return {{"definite", definite()},       {"semidefinite", semidefinite()},
           {"indefinite", indefinite()},   {"unresolved", unresolved()},
           {"constrained", constrained()}, {"constrained_range", constrained_range()},
           {"counted", counted()},         {"counted_in_part", counted_in_part()},
-          {"forecast", forecast()}};
+          {"forecast", forecast()},       {"located", located()},
+          {"nothing_located", nothing_located()}, {"location_unresolved", location_unresolved()}};
 }
 
 }  // namespace stanchion::samples

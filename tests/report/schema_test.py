@@ -34,7 +34,7 @@ class SchemaTest(unittest.TestCase):
         cls.documents = read_samples()
 
     def test_every_sample_is_valid(self):
-        self.assertEqual(len(self.documents), 9)
+        self.assertEqual(len(self.documents), 12)
         for name, document in self.documents.items():
             with self.subTest(name):
                 self.assertEqual([error.message for error in self.validator.iter_errors(document)], [])

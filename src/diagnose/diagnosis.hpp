@@ -1,0 +1,39 @@
+// From the inertia of a matrix and a kept factor to causes with nodes, motions, explanations and remedies.
+#pragma once
+
+#include <cstdint>
+#include <optional>
+
+#include "base/threads.hpp"
+#include "diagnose/structure.hpp"
+#include "inertia/two_offsets.hpp"
+#include "stanchion/located.hpp"
+#include "stanchion/outcome.hpp"
+#include "stanchion/request.hpp"
+
+namespace stanchion {
+
+struct DiagnosisInput {
+  const Analysis& analysis;
+  const ShiftedMatrix& matrix;           ///< as judged, without offset
+  const ShiftedMatrix* bare = nullptr;   ///< K without what is added, where something is
+  const KeptFactorization& kept;         ///< of A_s - cI
+  const CertifiedInertia& certified;     ///< level proved
+  ModelNames names;
+  Index rightly_negative = 0;             ///< negative directions that multipliers bring along: the rank of their rows
+  LocateOptions options;
+  std::uint64_t seed = 1;
+};
+
+struct Diagnosis {
+  LocateOutcome outcome;
+  /// A smaller offset that would tell apart what the inertia calls zero and the vectors found call small.
+  std::optional<double> sharper_resolution;
+};
+
+/// Finds, purifies, judges and names. When `sharper_resolution` is set nothing else is filled: certify again with it.
+/// Every located direction is held against A_s itself in double-double. Reproducible for any number of threads.
+/// Throws std::bad_alloc. Cost: some ten solves and products; memory: some vectors beside the factor.
+Diagnosis diagnose(const DiagnosisInput& input, ThreadPool& pool);
+
+}  // namespace stanchion

@@ -1,0 +1,70 @@
+#include "diagnose/near_zero.hpp"
+
+#include <algorithm>
+#include <cmath>
+
+#include "base/counter_random.hpp"
+
+namespace stanchion {
+namespace {
+
+constexpr int kMostRounds = 8;
+/// A residual that rounding alone explains, and the relative accuracy asked of a value above that.
+constexpr double kRoundingResidual = 3e-15, kRelativeResidual = 1e-4;
+
+Columns random_columns(Index rows, Index count, std::uint64_t seed) {
+  Columns x(rows, count);
+  const CounterRandom random(seed, 0x6c6f63617465ULL);
+  for (std::size_t k = 0; k < x.values.size(); k += 2) {
+    const auto [a, b] = random.gaussians(k / 2);
+    x.values[k] = a;
+    if (k + 1 < x.values.size()) x.values[k + 1] = b;
+  }
+  return x;
+}
+
+/// The largest residual among wanted pairs, over what is asked of it.
+double open_residual(const NearZero& found, double wanted) {
+  double most = 0;
+  for (const PartPairs& pairs : found.parts) {
+    for (std::size_t k = 0; k < pairs.ritz.value.size(); ++k) {
+      const double size = std::fabs(pairs.ritz.value[k]);
+      if (size > wanted) continue;
+      most = std::max(most, pairs.ritz.residual[k] / std::max(kRoundingResidual, kRelativeResidual * size));
+    }
+  }
+  return most;
+}
+
+void project_all(const Structure& s, NearZero& found, Columns& product) {
+  for (PartPairs& pairs : found.parts) pairs.ritz = project(found.x, product, s.part(pairs.part), pairs.used, true);
+}
+
+}  // namespace
+
+NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
+                        const std::vector<NodeMotion>& motions, const NearZeroOptions& options, ThreadPool& pool) {
+  NearZero found;
+  found.x = random_columns(structure.rows, options.columns, options.seed);
+  for (Index part = 0; part < structure.parts; ++part) found.parts.push_back({part, 0, {}});
+  remove(motions, structure, found.x);
+  double before = INFINITY;
+  for (int round = 1; round <= kMostRounds; ++round) {
+    found.rounds = round;
+    factor.solve(found.x);
+    remove(motions, structure, found.x);
+    for (PartPairs& pairs : found.parts) pairs.used = orthonormalise(found.x, structure.part(pairs.part));
+    if (round == 1) continue;
+    Columns product = times(matrix, found.x);
+    project_all(structure, found, product);
+    const double open = open_residual(found, options.wanted);
+    // The second round settles that nothing is near zero; a residual that falls no more is rounding.
+    if (round > 2 && (open <= 1 || !(open < before / 2))) break;
+    before = open;
+  }
+  Columns product = times_extended(matrix, found.x, pool);
+  project_all(structure, found, product);
+  return found;
+}
+
+}  // namespace stanchion

@@ -1,0 +1,37 @@
+// The eigenvectors of A_s nearest to zero, in every connected part at once.
+#pragma once
+
+#include <cstdint>
+#include <vector>
+
+#include "diagnose/kept_factor.hpp"
+#include "diagnose/node_motions.hpp"
+#include "diagnose/subspace.hpp"
+
+namespace stanchion {
+
+/// Ritz pairs of one part: columns [0, used) of NearZero::x on the part's rows, ascending in |value|.
+struct PartPairs {
+  Index part = 0, used = 0;
+  Ritz ritz;
+};
+
+struct NearZero {
+  Columns x;
+  std::vector<PartPairs> parts;  ///< by part number
+  int rounds = 0;
+};
+
+struct NearZeroOptions {
+  Index columns = 8;    ///< vectors per part; one solve serves all parts, which do not touch
+  double wanted = 0;    ///< pairs with |value| up to here must settle
+  std::uint64_t seed = 1;
+};
+
+/// Block inverse iteration with the kept factor of A_s - cI, `motions` kept out, one Rayleigh-Ritz projection a round
+/// and part (Parlett, The Symmetric Eigenvalue Problem, 1998, ch. 14). Ends when the wanted pairs have settled, or
+/// after some rounds; the residuals say which. Cost: a round takes one solve and one product.
+NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
+                        const std::vector<NodeMotion>& motions, const NearZeroOptions& options, ThreadPool& pool);
+
+}  // namespace stanchion

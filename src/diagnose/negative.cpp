@@ -1,0 +1,165 @@
+#include "diagnose/negative.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <numeric>
+
+namespace stanchion {
+namespace {
+
+constexpr int kMostRounds = 12;
+constexpr double kSettled = 1e-3;  ///< residual over |value|: shapes and signs, not digits, are asked
+constexpr Index kGuards = 4;
+
+class Iteration {
+ public:
+  Iteration(const Structure& s, const ShiftedMatrix& matrix, KeptFactor& factor, const std::vector<NodeMotion>& motions,
+            const NearZero& zero, double zero_limit, ThreadPool& pool)
+      : s_(s), matrix_(matrix), factor_(factor), motions_(motions), zero_(zero), zero_limit_(zero_limit), pool_(pool) {
+    all_.resize(static_cast<std::size_t>(s.rows));
+    std::iota(all_.begin(), all_.end(), 0);
+  }
+
+  NegativePairs run(Index negative, Index most) {
+    const Index wanted = std::min(negative, most);
+    const Index width = whole_blocks(wanted + kGuards);
+    Index filled = 0;
+    Columns start = factor_.lowest_pivot_vectors(2 * width, &filled);
+    keep_out(start);
+    Index used = orthonormalise(start, all_);
+    Columns product = times(matrix_, start);
+    Ritz ritz = project(start, product, all_, used, false);
+    x_ = leading(start, width, used);
+    ax_ = leading(product, width, used);
+    used_ = std::min(used, width);
+    p_ = Columns(s_.rows, width);
+    int round = 0;
+    for (; round < kMostRounds; ++round) {
+      ritz_ = Ritz{{ritz.value.begin(), ritz.value.begin() + used_},
+                   {ritz.residual.begin(), ritz.residual.begin() + used_}};
+      if (settled(wanted)) break;
+      ritz = step();
+    }
+    return finish(wanted, round);
+  }
+
+ private:
+  static Columns leading(const Columns& from, Index width, Index used) {
+    Columns to(from.rows, width);
+    for (Index i = 0; i < from.rows; ++i) {
+      for (Index c = 0; c < std::min(width, std::min(used, from.count)); ++c) to.row(i)[c] = from.row(i)[c];
+    }
+    return to;
+  }
+
+  bool settled(Index wanted) const {
+    if (used_ < wanted) return false;
+    for (Index k = 0; k < wanted; ++k) {
+      const auto at = static_cast<std::size_t>(k);
+      if (!(ritz_.value[at] < 0) || ritz_.residual[at] > kSettled * std::fabs(ritz_.value[at])) return false;
+    }
+    return true;
+  }
+
+  /// Takes the parts along node motions and zero directions away.
+  void keep_out(Columns& x) const {
+    remove(motions_, s_, x);
+    for (const PartPairs& pairs : zero_.parts) {
+      for (Index k = 0; k < pairs.used; ++k) {
+        if (std::fabs(pairs.ritz.value[static_cast<std::size_t>(k)]) > zero_limit_) continue;
+        std::vector<double> along(static_cast<std::size_t>(x.count), 0.0);
+        for (const Index i : s_.part(pairs.part)) {
+          const double z = zero_.x.row(i)[k];
+          for (Index c = 0; c < x.count; ++c) along[static_cast<std::size_t>(c)] += z * x.row(i)[c];
+        }
+        for (const Index i : s_.part(pairs.part)) {
+          const double z = zero_.x.row(i)[k];
+          for (Index c = 0; c < x.count; ++c) x.row(i)[c] -= z * along[static_cast<std::size_t>(c)];
+        }
+      }
+    }
+  }
+
+  /// One Rayleigh-Ritz step on the span of x, the residuals, preconditioned and plain, and the last directions.
+  Ritz step() {
+    const Index width = x_.count;
+    Columns w(s_.rows, width);
+    for (Index i = 0; i < s_.rows; ++i) {
+      for (Index c = 0; c < used_; ++c) {
+        w.row(i)[c] = ax_.row(i)[c] - ritz_.value[static_cast<std::size_t>(c)] * x_.row(i)[c];
+      }
+    }
+    // The residual itself serves eigenvalues far below zero, the preconditioned one those close to it.
+    Columns plain = w;
+    keep_out(plain);
+    factor_.solve_absolute(w);
+    keep_out(w);
+    Columns span(s_.rows, 4 * width);
+    for (Index i = 0; i < s_.rows; ++i) {
+      double* to = span.row(i);
+      std::copy_n(x_.row(i), width, to);
+      std::copy_n(w.row(i), width, to + width);
+      std::copy_n(plain.row(i), width, to + 2 * width);
+      std::copy_n(p_.row(i), width, to + 3 * width);
+    }
+    const Columns before = x_;
+    const Index used = orthonormalise(span, all_);
+    Columns product = times(matrix_, span);
+    Ritz ritz = project(span, product, all_, used, false);
+    x_ = leading(span, width, used);
+    ax_ = leading(product, width, used);
+    used_ = std::min(used, width);
+    // The next directions: the new vectors less their parts along the old ones.
+    p_ = x_;
+    std::vector<double> overlap(static_cast<std::size_t>(width) * static_cast<std::size_t>(width), 0.0);
+    for (Index i = 0; i < s_.rows; ++i) {
+      for (Index a = 0; a < width; ++a) {
+        for (Index b = 0; b < width; ++b) overlap[static_cast<std::size_t>(a * width + b)] += before.row(i)[a] * x_.row(i)[b];
+      }
+    }
+    for (Index i = 0; i < s_.rows; ++i) {
+      for (Index a = 0; a < width; ++a) {
+        for (Index b = 0; b < width; ++b) p_.row(i)[b] -= before.row(i)[a] * overlap[static_cast<std::size_t>(a * width + b)];
+      }
+    }
+    return ritz;
+  }
+
+  NegativePairs finish(Index wanted, int round) {
+    NegativePairs found;
+    found.rounds = round;
+    found.x = x_;
+    Columns product = times_extended(matrix_, found.x, pool_);
+    Ritz ritz = project(found.x, product, all_, used_, false);
+    for (std::size_t k = 0; k < ritz.value.size() && k < static_cast<std::size_t>(wanted); ++k) {
+      // An eigenvalue lies within the residual of the value (Parlett, ch. 4): only then is the sign known.
+      if (!(ritz.value[k] + ritz.residual[k] < 0)) break;
+      found.ritz.value.push_back(ritz.value[k]);
+      found.ritz.residual.push_back(ritz.residual[k]);
+    }
+    return found;
+  }
+
+  const Structure& s_;
+  const ShiftedMatrix& matrix_;
+  KeptFactor& factor_;
+  const std::vector<NodeMotion>& motions_;
+  const NearZero& zero_;
+  double zero_limit_;
+  ThreadPool& pool_;
+  std::vector<Index> all_;
+  Columns x_, ax_, p_;
+  Ritz ritz_;
+  Index used_ = 0;
+};
+
+}  // namespace
+
+NegativePairs find_negative(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
+                            const std::vector<NodeMotion>& motions, const NearZero& zero, double zero_limit,
+                            Index negative, Index most, ThreadPool& pool) {
+  if (negative == 0 || most == 0) return {};
+  return Iteration(structure, matrix, factor, motions, zero, zero_limit, pool).run(negative, most);
+}
+
+}  // namespace stanchion

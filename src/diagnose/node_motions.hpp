@@ -1,0 +1,25 @@
+// Motions of one node alone that nothing resists: empty rows, rotations without stiffness, collinear pins.
+#pragma once
+
+#include <vector>
+
+#include "diagnose/columns.hpp"
+#include "diagnose/structure.hpp"
+
+namespace stanchion {
+
+/// A unit vector on the rows of one node with A_s v = 0 to `kNodeMotionLimit`.
+struct NodeMotion {
+  Index node = 0;
+  std::vector<double> entry;  ///< by the node's rows, in the order of Structure::rows_of_node
+  bool empty_row = false;     ///< one dof, whose row is empty
+};
+
+/// All of them, mutually orthogonal. Cost: one pass over the entries and an eigenproblem of each node's own block.
+/// Multipliers are left out: their diagonal is rightly zero.
+std::vector<NodeMotion> find_node_motions(const Structure& structure, const ShiftedMatrix& matrix);
+
+/// x := x less its parts along the motions.
+void remove(const std::vector<NodeMotion>& motions, const Structure& structure, Columns& x);
+
+}  // namespace stanchion

@@ -1,0 +1,33 @@
+// Products, orthogonalisation and Rayleigh-Ritz projection on a few vectors, part by part.
+#pragma once
+
+#include <span>
+#include <vector>
+
+#include "base/threads.hpp"
+#include "diagnose/columns.hpp"
+#include "sparse/matrix_family.hpp"
+
+namespace stanchion {
+
+/// y = A x in double precision, for shapes and iterations; what is judged goes through extended_product.
+Columns times(const ShiftedMatrix& matrix, const Columns& x);
+
+/// y = A x accumulated in double-double and rounded once.
+Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool& pool);
+
+/// Rows of each group, for work that keeps to one part of the structure.
+using RowGroup = std::span<const Index>;
+
+/// Gram-Schmidt, twice, over the rows of `group` only. Columns that depend on earlier ones are dropped; what is left
+/// moves to the front, the rest of the group's rows becomes zero. Returns how many are left.
+Index orthonormalise(Columns& x, RowGroup group);
+
+/// Ritz values of orthonormal columns x[0..used) with ax = A x over a group; the columns (and ax) are replaced by the
+/// Ritz vectors, ascending in |value| (or in value), and the residual norms ||A x - value x|| come along.
+struct Ritz {
+  std::vector<double> value, residual;
+};
+Ritz project(Columns& x, Columns& ax, RowGroup group, Index used, bool by_size);
+
+}  // namespace stanchion

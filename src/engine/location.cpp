@@ -1,0 +1,89 @@
+#include "engine/location.hpp"
+
+#include "diagnose/diagnosis.hpp"
+#include "engine/mass_totals.hpp"
+
+namespace stanchion {
+namespace {
+
+void leave_out(const char* code, const char* what, const char* instead, const Status& because, Outcome& outcome) {
+  outcome.warnings.push_back({code,
+                              std::string(what) + " cannot be used and is left out; " + instead + ". Reason: " +
+                                  because.message() + (because.remedy().empty() ? "" : ". Remedy: " + because.remedy()),
+                              because.place()});
+}
+
+}  // namespace
+
+Result<ModelInput> read_model_to_locate(const Request& request, const RunContext& context, ThreadPool& pool,
+                                        Outcome& outcome) {
+  const Outcome before = outcome;
+  auto model = read_model(request, context, pool, outcome);
+  if (model.ok() || !request.input.dofs) return model;
+  // Is it the dof map? Only then does reading go on without it.
+  if (model.status().place().rfind(*request.input.dofs, 0) != 0) return model;
+  Request without = request;
+  without.input.dofs.reset();
+  outcome = before;
+  leave_out("dof-map-unusable", "the dof map", "equations are named by their numbers", model.status(), outcome);
+  return read_model(without, context, pool, outcome);
+}
+
+LocationFacts collect_location_facts(ModelInput& model, const Request& request, Outcome& outcome) {
+  LocationFacts facts;
+  facts.dofs = model.dofs;
+  facts.multipliers = model.multipliers;
+  facts.original = model.original;
+  if (request.input.nodes) {
+    auto nodes = read_nodes(*request.input.nodes);
+    if (nodes.ok()) {
+      facts.nodes = std::move(*nodes);
+    } else {
+      leave_out("nodes-unusable", "the node table", "places are not known", nodes.status(), outcome);
+    }
+  }
+  if (request.input.axes) {
+    auto axes = read_axes(*request.input.axes);
+    if (axes.ok()) {
+      facts.axes = std::move(*axes);
+    } else {
+      leave_out("axes-unusable", "the table of nodal axes", "global directions are taken", axes.status(), outcome);
+    }
+  }
+  if (request.input.mass && model.second) {
+    if (model.dofs) {
+      facts.mass = mass_totals(*model.second, *model.dofs, facts.nodes ? &*facts.nodes : nullptr,
+                               facts.axes ? &*facts.axes : nullptr);
+    }
+    model.second.reset();
+  }
+  return facts;
+}
+
+Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const LocationFacts& facts, const Request& request,
+                                            Index rightly_negative, ThreadPool& pool, Outcome& outcome) {
+  const ShiftedMatrix matrix = pencil.combination(0);
+  ShiftedMatrix bare = matrix;  // K alone
+  for (std::size_t t = 1; t < bare.coefficients.size(); ++t) bare.coefficients[t] = 0;
+  const ModelNames names{facts.dofs ? &*facts.dofs : nullptr, facts.nodes ? &*facts.nodes : nullptr,
+                         facts.axes ? &*facts.axes : nullptr, &facts.original, &facts.multipliers};
+  std::optional<double> resolution;
+  for (int round = 0;; ++round) {
+    std::optional<KeptFactorization> kept;
+    auto certified = pencil.certify_keeping(resolution, 0, kept, pool, outcome);
+    if (!certified.ok()) return certified.status();
+    if (certified->certificate.level == Level::kNone || !kept) return certified;
+    auto diagnosis = diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare, *kept,
+                               *certified, names, rightly_negative, request.locate, pencil.seed()},
+                              pool);
+    if (diagnosis.sharper_resolution && round < 2 && !request.resolution) {
+      resolution = diagnosis.sharper_resolution;
+      continue;
+    }
+    diagnosis.outcome.mass = facts.mass;
+    outcome.located = std::move(diagnosis.outcome);
+    return certified;
+  }
+}
+
+}  // namespace stanchion
