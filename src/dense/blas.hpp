@@ -19,15 +19,6 @@ void gemm_nn(Index m, Index n, Index k, double alpha, const double* a, Index lda
 void gemm_tn(Index m, Index n, Index k, double alpha, const double* a, Index lda, const double* b, Index ldb,
              double beta, double* c, Index ldc);
 
-/// True when gemm_nt(.., -1, .., 1, ..) forms each sum of products apart and adds it to C once, as packed kernels do;
-/// false when it adds product by product, as plain loops do. The error bounds count additions accordingly. Found once,
-/// on some hundred shapes with k up to 256, by sums that lose every product added alone to a large C. Thread safe.
-bool products_are_summed_apart();
-
-/// Most additions to an entry of C in one such call over k products: a packed kernel may cut k into blocks of no fewer
-/// than 64, a plain loop adds each product.
-inline Index additions_of_a_product(Index k) { return products_are_summed_apart() ? 1 + k / 64 : k; }
-
 /// Turns the library's own threads off, once per process. Call before the first product.
 void use_single_threaded_blas();
 

@@ -44,7 +44,7 @@ struct BlockLayout {
   }
 };
 
-constexpr Index kFrontBlock = 256;  ///< columns of a front updated together
+constexpr Index kFrontBlock = 192;  ///< columns of a front updated together; a multiple of kMostRowStrip
 
 /// Layout of a front of `order` rows: tall blocks for the matrix products.
 inline BlockLayout front_layout(Index order) {

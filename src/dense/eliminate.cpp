@@ -3,28 +3,33 @@
 #include <algorithm>
 #include <cmath>
 
-#include "dense/blas.hpp"
-#include "dense/trailing_update.hpp"
-
 namespace stanchion {
 namespace {
 
-constexpr Index kTileRows = 256;  ///< rows below the tile handled as one piece
+constexpr Index kPieceRows = kFrontBlock;  ///< rows beyond the panel handled as one piece
 constexpr double kUnit = 0x1p-53;
-// Parts of the sums over columns of a tile: of |L|, of |A21|, of L with the signs of the fault vector.
+// Parts of the sums over columns of a tile: of |L|, of |A21|, of L with the signs of the fault vector; the largest |w|.
 constexpr Index kSizes = 0, kOperand = kTileWidth, kSigned = 2 * kTileWidth, kSums = 3 * kTileWidth;
+constexpr Index kLargest = kSums, kParts = 4 * kTileWidth;
 
 /// One column block of the front while its pivots are taken.
 struct Panel {
-  Index begin;  ///< first column
-  Index end;    ///< end of the columns in this block that may be pivots
-  Index next;   ///< first column not yet eliminated
+  Index begin;     ///< first column
+  Index end;       ///< end of the columns in this block that may still be pivots
+  Index next;      ///< first column not yet eliminated
+  Index full_end;  ///< end of the columns in this block that were candidates at first
 };
 
 class FrontEliminator {
  public:
   FrontEliminator(const Front& front, const EliminationOptions& options, EliminationScratch& scratch, ThreadPool* team)
-      : front_(front), layout_(front_.matrix.layout), options_(options), scratch_(scratch), team_(team) {
+      : front_(front),
+        layout_(front_.matrix.layout),
+        options_(options),
+        scratch_(scratch),
+        beyond_(scratch.beyond),
+        inside_(scratch.inside),
+        team_(team) {
     if (front.fault.sign == nullptr) {
       const auto order = static_cast<std::size_t>(layout_.order);
       std::vector<double>& zeros = scratch_.no_fault_vector;
@@ -34,21 +39,20 @@ class FrontEliminator {
     const std::size_t tile = std::size_t{kTileWidth} * kTileWidth;
     scratch_.tile.resize(tile);
     scratch_.inverse.resize(tile);
+    scratch_.factor.resize(tile);
     scratch_.permutation.resize(kTileWidth);
     scratch_.sums.resize(kSums);
-    const Index widest = std::min(front.candidates, kFrontBlock);
-    const Offset needed = Offset{layout_.padded} * widest;
-    if (scratch_.scaled.size() < needed) scratch_.scaled = Buffer<double>(needed);
   }
 
   EliminationResult run() {
     Index done = 0, limit = front_.candidates;  // [limit, candidates) failed and wait for the search
     while (done < limit) {
       const Index block = layout_.block_of(done);
-      Panel panel{done, std::min(layout_.block_end(block), limit), done};
-      const Index panel_end = panel.end;
+      const Index panel_end = std::min(layout_.block_end(block), limit);
+      Panel panel{done, panel_end, done, panel_end};
+      beyond_.reset(strip_begin(panel_end), layout_.order, panel_end - done);
       if (!take_pivots(panel)) return result_;
-      update_beyond(panel, panel_end);
+      update_beyond(panel);
       done = panel.next;
       limit = set_aside_failed(done, panel_end, limit);
     }
@@ -66,10 +70,6 @@ class FrontEliminator {
   Index first_live(Index next) const { return options_.keep_factor ? 0 : next; }
   double* tile() { return scratch_.tile.data(); }
   double* inverse() { return scratch_.inverse.data(); }
-  double* scaled(const Panel& panel, Index row, Index column) {
-    return scratch_.scaled.data() + Offset{column - panel.begin} * leading_scaled(panel) + (row - panel.begin);
-  }
-  Index leading_scaled(const Panel& panel) const { return layout_.padded - panel.begin / 8 * 8; }
   Index leading(const Panel& panel) const { return layout_.leading_dimension(layout_.block_of(panel.begin)); }
   PivotArrays pivots_at(Index column) const {
     return {front_.pivots.diagonal + column, front_.pivots.off_diagonal + column, front_.pivots.kind + column};
@@ -77,13 +77,12 @@ class FrontEliminator {
 
   /// Takes tiles until every column of the panel is a pivot or has failed. False: stopped or not finite.
   bool take_pivots(Panel& panel) {
-    const Index full_end = panel.end;
     Index additions = 0;
     while (panel.next < panel.end) {
       const Index width = std::min(kTileWidth, panel.end - panel.next);
-      const Index accepted = take_tile(panel, width, full_end);
+      const Index accepted = take_tile(panel, width);
       if (result_.stopped || result_.not_finite) return false;
-      additions += additions_of_a_product(accepted);
+      ++additions;
       const Index failed = width - accepted;
       panel.next += accepted;
       // Failed columns change places with the last ones of the panel that have not been tried.
@@ -145,52 +144,103 @@ class FrontEliminator {
     return found;
   }
 
-  Index pieces_below(Index row) const { return (layout_.order - row + kTileRows - 1) / kTileRows; }
+  // The rows below a tile are worked on in pieces: piece 0 is the rest of the panel, from `below` on; the others lie
+  // beyond it, from the first strip of beyond_ on.
+  struct PieceRows {
+    Index begin, end;
+    bool inside;
+  };
+  Offset pieces(const Panel& panel) const {
+    if (panel.full_end == layout_.order) return 1;
+    return 1 + (layout_.order - strip_begin(panel.full_end) + kPieceRows - 1) / kPieceRows;
+  }
+  PieceRows rows_of(const Panel& panel, Index below, Offset piece) const {
+    if (piece == 0) return {below, panel.full_end, true};
+    const Index begin = strip_begin(panel.full_end) + static_cast<Index>(piece - 1) * kPieceRows;
+    return {begin, std::min(begin + kPieceRows, layout_.order), false};
+  }
+  /// W of a piece: the operand and how far its strips lie apart.
+  double* scaled(const Panel& panel, const PieceRows& rows) {
+    return rows.inside ? inside_.right(0, 0) : beyond_.right(rows.begin, panel.next - panel.begin);
+  }
+  double* lower(const Panel& panel, const PieceRows& rows) {
+    return rows.inside ? inside_.left(0, 0) : beyond_.left(rows.begin, panel.next - panel.begin);
+  }
+  Index scaled_stride(const PieceRows& rows) const {
+    return rows.inside ? inside_.right_stride() : beyond_.right_stride();
+  }
+  Index lower_stride(const PieceRows& rows) const {
+    return rows.inside ? inside_.left_stride() : beyond_.left_stride();
+  }
+  double* part(Offset piece) { return scratch_.column_parts.data() + piece * kParts; }
 
-  /// W = A21 L11^-T piece by piece; returns how many of the `found` pivots are accepted.
+  /// W = A21 L11^-T of one piece, and the largest |w| of each column.
+  void multiply_piece(const Panel& panel, const PieceRows& rows, Index found, double* largest) {
+    double* w = scaled(panel, rows);
+    const Index stride = scaled_stride(rows), count = rows.end - rows.begin;
+    kernels().multiply_by_upper(front_.matrix.column(rows.begin, panel.next), leading(panel), count,
+                                scratch_.factor.data(), found, w, stride);
+    // Rows of the panel that share the first strip beyond it.
+    const Index strip = kernels().column_strip;
+    for (Index i = 0; !rows.inside && i < panel.full_end - rows.begin; ++i) {
+      for (Index k = 0; k < found; ++k) w[Offset{i / strip} * stride + Offset{k} * strip + i % strip] = 0;
+    }
+    kernels().strips_abs_max(w, stride, count, found, largest);
+  }
+
+  /// W of all rows below; returns how many of the `found` pivots are accepted.
   Index multiply_and_accept(const Panel& panel, Index below, Index found) {
-    const Index at = panel.next, pieces = pieces_below(below);
+    const Offset count = pieces(panel);
     auto& parts = scratch_.column_parts;
-    parts.resize(std::max<std::size_t>(parts.size(), static_cast<std::size_t>(pieces) * kSums));
-    for_each_piece(team_, pieces, [&](Offset piece) {
-      const Index row = below + static_cast<Index>(piece) * kTileRows;
-      const Index rows = std::min(kTileRows, layout_.order - row);
-      double* w = scaled(panel, row, at);
-      gemm_nt(rows, found, found, 1.0, front_.matrix.column(row, at), leading(panel), inverse(), kTileWidth, 0.0, w,
-              leading_scaled(panel));
-      kernels().column_abs_max(w, leading_scaled(panel), rows, found, parts.data() + piece * kTileWidth);
+    parts.resize(std::max(parts.size(), static_cast<std::size_t>(count) * kParts));
+    for_each_piece(team_, count, [&](Offset piece) {
+      multiply_piece(panel, rows_of(panel, below, piece), found, part(piece) + kLargest);
     });
     double largest[kTileWidth] = {};
-    for (Index piece = 0; piece < pieces; ++piece) {
-      for (Index k = 0; k < found; ++k) {
-        largest[k] = std::max(largest[k], parts[static_cast<std::size_t>(piece) * kTileWidth + static_cast<std::size_t>(k)]);
-      }
+    for (Offset piece = 0; piece < count; ++piece) {
+      for (Index k = 0; k < found; ++k) largest[k] = std::max(largest[k], part(piece)[kLargest + k]);
     }
-    if (!options_.definite) return accept(at, found, largest);
+    if (!options_.definite) return accept(panel.next, found, largest);
     for (Index k = 0; k < found; ++k) {
       if (!std::isfinite(largest[k])) result_.not_finite = true;
     }
     return found;
   }
 
-  /// Overwrites A21 by L = W D^-1 and adds up what the bounds need: column sums of |L| and of L with signs, of |A21|
+  /// L = W D^-1 for all rows below, and the sums that the bounds need: column sums of |L| and of L with signs, of |A21|
   /// (the operand that was multiplied), and its weighted row sums into the row bounds.
   void divide(const Panel& panel, Index below, Index accepted, const double* weight) {
-    const Index at = panel.next, pieces = pieces_below(below);
-    auto& parts = scratch_.column_parts;
-    std::fill_n(parts.begin(), static_cast<std::size_t>(pieces) * kSums, 0.0);
-    for_each_piece(team_, pieces, [&](Offset piece) {
-      const Index row = below + static_cast<Index>(piece) * kTileRows;
-      const Index rows = std::min(kTileRows, layout_.order - row);
-      double* part = parts.data() + piece * kSums;
-      double* a = front_.matrix.column(row, at);
-      kernels().weighted_abs_sums(a, leading(panel), rows, accepted, weight, front_.row_error + row, part + kOperand);
-      kernels().divide_by_pivots(scaled(panel, row, at), leading_scaled(panel), a, leading(panel), rows, accepted,
-                                 pivots_at(at), front_.fault.sign + row, part + kSizes, part + kSigned);
+    const Index at = panel.next;
+    const Offset count = pieces(panel);
+    for_each_piece(team_, count, [&](Offset piece) {
+      const PieceRows rows = rows_of(panel, below, piece);
+      double* sums = part(piece);
+      std::fill_n(sums, kSums, 0.0);
+      const Index first = rows.inside ? rows.begin : std::max(rows.begin, panel.full_end);
+      kernels().weighted_abs_sums(front_.matrix.column(first, at), leading(panel), rows.end - first, accepted, weight,
+                                  front_.row_error + first, sums + kOperand);
+      // Rows of the panel are needed in the front while its pivots are taken; others only when they are kept.
+      double* plain = rows.inside ? front_.matrix.column(rows.begin, at) : nullptr;
+      kernels().divide_strips(scaled(panel, rows), scaled_stride(rows), rows.end - rows.begin, accepted, pivots_at(at),
+                              front_.fault.sign + rows.begin, lower(panel, rows), lower_stride(rows), plain,
+                              leading(panel), sums + kSizes, sums + kSigned);
+      if (options_.keep_factor && !rows.inside) unpack_lower(panel, first, rows, accepted);
     });
-    for (Index piece = 0; piece < pieces; ++piece) {
-      const double* part = parts.data() + Offset{piece} * kSums;
-      for (Index k = 0; k < kSums; ++k) scratch_.sums[static_cast<std::size_t>(k)] += part[k];
+    for (Offset piece = 0; piece < count; ++piece) {
+      for (Index k = 0; k < kSums; ++k) scratch_.sums[static_cast<std::size_t>(k)] += part(piece)[k];
+    }
+  }
+
+  /// Writes rows [first, rows.end) of the new columns of L into the front.
+  void unpack_lower(const Panel& panel, Index first, const PieceRows& rows, Index accepted) {
+    const Index strip = kernels().row_strip;
+    const double* packed = lower(panel, rows);
+    for (Index k = 0; k < accepted; ++k) {
+      double* target = front_.matrix.column(first, panel.next + k);
+      for (Index i = first; i < rows.end; ++i) {
+        const Index r = i - rows.begin;
+        target[i - first] = packed[Offset{r / strip} * lower_stride(rows) + Offset{k} * strip + r % strip];
+      }
     }
   }
 
@@ -224,9 +274,8 @@ class FrontEliminator {
     }
   }
 
-  /// Writes L11 into the front, and the W rows of the tile's columns that were not accepted.
-  void store_tile(const Panel& panel, Index width, Index accepted) {
-    const Index at = panel.next;
+  /// Writes L11 into the front.
+  void store_tile(Index at, Index width, Index accepted) {
     const double* sign = front_.fault.sign + at;
     double* sums = scratch_.sums.data();
     for (Index k = 0; k < accepted; ++k) {
@@ -241,13 +290,12 @@ class FrontEliminator {
       target[k] = 1;
       sums[kSizes + k] += size;
       sums[kSigned + k] += signed_sum;
-      for (Index i = accepted; i < width; ++i) *scaled(panel, at + i, at + k) = tile()[k + Offset{i} * kTileWidth];
     }
   }
 
-  /// growth += |L| |D| (|L|^T e) and image += L D (L^T x) for the accepted columns.
+  /// growth += |L| |D| (|L|^T e) and image += L D (L^T x) for the accepted columns, in the rows of the tile.
   void add_growth_and_image(const Panel& panel, Index width, Index accepted) {
-    const Index at = panel.next, below = at + width;
+    const Index at = panel.next;
     const PivotArrays pivots = pivots_at(at);
     double weight[kTileWidth], step[kTileWidth];
     const double *g = scratch_.sums.data() + kSizes, *z = scratch_.sums.data() + kSigned;
@@ -270,21 +318,70 @@ class FrontEliminator {
         image[i] += column[i] * step[k];
       }
     }
-    const Index pieces = pieces_below(below);
-    for_each_piece(team_, pieces, [&](Offset piece) {
-      const Index row = below + static_cast<Index>(piece) * kTileRows;
-      const Index rows = std::min(kTileRows, layout_.order - row);
-      kernels().add_growth_and_image(front_.matrix.column(row, at), leading(panel), rows, accepted, weight, step,
-                                     front_.growth + row, front_.fault.image + row);
-    });
-    result_.sign_sum_depth = std::max(
-        result_.sign_sum_depth, width + pieces + 1 + signed_sum_depth(std::min(kTileRows, layout_.order - below)));
+    result_.sign_sum_depth = std::max(result_.sign_sum_depth, width + static_cast<Index>(pieces(panel)) + 1 +
+                                                                  signed_sum_depth(kPieceRows));
     // A row of the tile that stays gets its products one by one.
     result_.image_additions += accepted < width ? accepted : image_additions(accepted);
+    for (Index k = 0; k < accepted; ++k) {
+      weight_[k] = weight[k];
+      step_[k] = step[k];
+    }
+  }
+
+  /// The rest of the panel as operands from `rest` on, when columns of the tile itself stay behind: their W is in the
+  /// upper part of the tile.
+  void repack_inside(const Panel& panel, Index width, Index accepted) {
+    const Index at = panel.next, rest = at + accepted, below = at + width, rows = panel.full_end - rest;
+    std::vector<double> w(static_cast<std::size_t>(rows) * static_cast<std::size_t>(accepted));
+    const Index strip = kernels().column_strip;
+    for (Index k = 0; k < accepted; ++k) {
+      double* target = w.data() + Offset{k} * rows;
+      for (Index i = accepted; i < width; ++i) target[i - accepted] = tile()[k + Offset{i} * kTileWidth];
+      for (Index i = below; i < panel.full_end; ++i) {
+        const Index r = i - below;
+        target[i - rest] = inside_.right(0, 0)[Offset{r / strip} * inside_.right_stride() + Offset{k} * strip + r % strip];
+      }
+    }
+    inside_.reset(0, rows, kTileWidth);
+    kernels().pack_left(front_.matrix.column(rest, at), leading(panel), rows, accepted, inside_.left(0, 0),
+                        inside_.left_stride());
+    kernels().pack_right(w.data(), rows, rows, accepted, inside_.right(0, 0), inside_.right_stride());
+  }
+
+  /// Takes the accepted columns out of the rest of the panel, and adds their growth and image below it.
+  void update_panel(const Panel& panel, Index width, Index accepted) {
+    const Index at = panel.next, below = at + width, rest = at + accepted;
+    const PieceRows first = rows_of(panel, below, 0);
+    if (first.end > first.begin) {
+      kernels().strips_growth_and_image(lower(panel, first), lower_stride(first), first.end - first.begin, accepted,
+                                        weight_, step_, front_.growth + below, front_.fault.image + below);
+    }
+    if (accepted < width) repack_inside(panel, width, accepted);
+    const Index columns = panel.full_end - rest;
+    const auto update = [&](const PieceRows& rows, Index begin, Index end) {
+      if (begin >= end || columns == 0) return;
+      kernels().subtract_product(lower(panel, {begin, end, rows.inside}), lower_stride(rows), inside_.right(0, 0),
+                                 inside_.right_stride(), accepted, end - begin, columns, begin - rest, 0,
+                                 front_.matrix.column(begin, rest), leading(panel));
+    };
+    // The first strip beyond may hold rows of the panel: it goes with them, for it writes to them too.
+    const Index strip = strip_begin(panel.full_end);
+    const Index shared_end = strip < panel.full_end ? std::min(strip + kernels().row_strip, layout_.order) : strip;
+    for_each_piece(team_, pieces(panel), [&](Offset piece) {
+      const PieceRows rows = rows_of(panel, below, piece);
+      if (rows.inside) {
+        update(rows, rest, panel.full_end);
+        if (pieces(panel) > 1) update({strip, shared_end, false}, strip, shared_end);
+        return;
+      }
+      update(rows, std::max(rows.begin, shared_end), rows.end);
+      kernels().strips_growth_and_image(lower(panel, rows), lower_stride(rows), rows.end - rows.begin, accepted, weight_,
+                                        step_, front_.growth + rows.begin, front_.fault.image + rows.begin);
+    });
   }
 
   /// Eliminates up to `width` columns at panel.next and updates the rest of the panel. Returns how many.
-  Index take_tile(const Panel& panel, Index width, Index full_end) {
+  Index take_tile(const Panel& panel, Index width) {
     const Index at = panel.next, below = at + width;
     const Index found = factor_tile(at, width);
     if (options_.definite && found < width) {
@@ -293,9 +390,12 @@ class FrontEliminator {
       return 0;
     }
     if (found == 0) return 0;
+    inside_.reset(0, panel.full_end - below, kTileWidth);
     Index accepted = found;
     if (below < layout_.order) {
       kernels().invert_unit_lower(tile(), kTileWidth, found, inverse(), kTileWidth);
+      kernels().pack_right(inverse(), kTileWidth, found, found, scratch_.factor.data(),
+                           kTileWidth * kernels().column_strip);
       accepted = multiply_and_accept(panel, below, found);
       if (result_.not_finite || accepted == 0) return 0;
     }
@@ -306,27 +406,20 @@ class FrontEliminator {
       divide(panel, below, accepted, weight);
       add_column_errors(at, accepted, scratch_.sums.data() + kTileWidth);
     }
-    store_tile(panel, width, accepted);
+    store_tile(at, width, accepted);
     add_growth_and_image(panel, width, accepted);
     for (Index k = 0; k < accepted; ++k) result_.two_by_two += front_.pivots.kind[at + k] == PivotKind::kTwoFirst;
     result_.longest_sum = std::max(result_.longest_sum, accepted);
-    const Index rest = at + accepted;
-    update_trailing(front_.matrix,
-                    {front_.matrix.column(rest, at), leading(panel), scaled(panel, rest, at), leading_scaled(panel),
-                     rest, accepted},
-                    rest, full_end, team_);
+    if (at + accepted < layout_.order) update_panel(panel, width, accepted);
     return accepted;
   }
 
-  void update_beyond(const Panel& panel, Index panel_end) {
+  void update_beyond(const Panel& panel) {
     const Index count = panel.next - panel.begin;
-    if (count == 0 || panel_end >= layout_.order) return;
+    if (count == 0 || panel.full_end >= layout_.order) return;
     result_.longest_sum = std::max(result_.longest_sum, count);
-    additions_beyond_ += additions_of_a_product(count);
-    update_trailing(front_.matrix,
-                    {front_.matrix.column(panel_end, panel.begin), leading(panel), scaled(panel, panel_end, panel.begin),
-                     leading_scaled(panel), panel_end, count},
-                    panel_end, layout_.order, team_);
+    ++additions_beyond_;
+    update_trailing(front_.matrix, beyond_, count, panel.full_end, team_);
   }
 
   /// Columns [done, panel_end) failed: put untried candidates from the end in their places. Returns the new limit.
@@ -343,8 +436,10 @@ class FrontEliminator {
   const BlockLayout& layout_;
   const EliminationOptions& options_;
   EliminationScratch& scratch_;
+  EliminatedColumns &beyond_, &inside_;
   ThreadPool* team_;
   EliminationResult result_;
+  double weight_[kTileWidth], step_[kTileWidth];  ///< |D| |L|^T e and D L^T x of the current tile
   Index additions_beyond_ = 0;  ///< to entries beyond the panels, over all panels
   Index most_in_panel_ = 0;     ///< to entries of one panel, by its own tiles
 };

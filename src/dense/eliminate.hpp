@@ -3,10 +3,9 @@
 
 #include <vector>
 
-#include "base/buffer.hpp"
-#include "base/threads.hpp"
 #include "dense/block_lower.hpp"
 #include "dense/kernels.hpp"
+#include "dense/trailing_update.hpp"
 
 namespace stanchion {
 
@@ -48,10 +47,14 @@ struct EliminationResult {
 
 /// Scratch of one worker, grown on demand and reused from front to front.
 struct EliminationScratch {
-  Buffer<double> scaled;                ///< W = L D of the current column block
-  std::vector<double> tile, inverse, column_parts, sums;
+  EliminatedColumns beyond;             ///< rows beyond the current column block
+  EliminatedColumns inside;             ///< rows of the current column block below the current tile
+  Buffer<double> scaled;                ///< W = L D of pivots found by search
+  std::vector<double> tile, inverse, factor, column_parts, sums;
   std::vector<double> no_fault_vector;  ///< zeros for a front without one
   std::vector<Index> permutation;
+
+  Offset doubles() const { return beyond.doubles() + inside.doubles() + scaled.size(); }
 };
 
 /// Pivots are taken tile by tile inside a column block: first in the order given, then with complete pivoting

@@ -2,9 +2,7 @@
 #include <algorithm>
 #include <cmath>
 
-#include "dense/blas.hpp"
 #include "dense/eliminate.hpp"
-#include "dense/trailing_update.hpp"
 
 namespace stanchion {
 namespace {
@@ -126,8 +124,7 @@ class SearchEliminator {
     }
     column[k] = 1;
     const double weight = std::fabs(pivot) * size, step = pivot * signed_sum;
-    kernels().add_growth_and_image(column + k, leading_scaled(), order() - k, 1, &weight, &step, front_.growth + k,
-                                   front_.fault.image + k);
+    add_growth_and_image(column, k, weight, step);
     note_image(order() - k);
     ++next_;
     update_candidates(k, 1);
@@ -144,21 +141,24 @@ class SearchEliminator {
     front_.pivots.off_diagonal[k + 1] = 0;
     front_.pivots.kind[k] = PivotKind::kTwoFirst;
     front_.pivots.kind[k + 1] = PivotKind::kTwoSecond;
-    const PivotArrays pivots{front_.pivots.diagonal + k, front_.pivots.off_diagonal + k, front_.pivots.kind + k};
     double* first = m_.column(k, k) - k;
     double* second = m_.column(k + 1, k + 1) - (k + 1);
-    const Index below = k + 2, rows = order() - below;
+    const Index below = k + 2;
     for (Index i = below; i < order(); ++i) {
       scaled(i, k) = first[i];
       scaled(i, k + 1) = second[i];
     }
     double sums[2] = {1, 1}, z[2] = {front_.fault.sign[k], front_.fault.sign[k + 1]};
-    if (rows > 0) {
-      std::vector<double> pair(static_cast<std::size_t>(rows) * 2);
-      kernels().divide_by_pivots(&scaled(below, k), leading_scaled(), pair.data(), rows, rows, 2, pivots,
-                                 front_.fault.sign + below, sums, z);
-      std::copy_n(pair.begin(), rows, first + below);
-      std::copy_n(pair.begin() + rows, rows, second + below);
+    // Backward stable since |a|, |c| <= kTwoByTwoShare |b| (src/inertia/error_bound.md, section 2).
+    const double a_over_b = a / b, c_over_b = c / b, inverse = 1 / (b * (a_over_b * c_over_b - 1));
+    for (Index i = below; i < order(); ++i) {
+      const double f = first[i], g = second[i];
+      first[i] = (c_over_b * f - g) * inverse;
+      second[i] = (a_over_b * g - f) * inverse;
+      sums[0] += std::fabs(first[i]);
+      sums[1] += std::fabs(second[i]);
+      z[0] += first[i] * front_.fault.sign[i];
+      z[1] += second[i] * front_.fault.sign[i];
     }
     first[k] = second[k + 1] = 1;
     first[k + 1] = 0;
@@ -167,13 +167,20 @@ class SearchEliminator {
     const double step[2] = {a * z[0] + b * z[1], b * z[0] + c * z[1]};
     const double* column[2] = {first, second};
     for (Index p = 0; p < 2; ++p) {
-      kernels().add_growth_and_image(column[p] + k + p, leading_scaled(), order() - k - p, 1, weight + p, step + p,
-                                     front_.growth + k + p, front_.fault.image + k + p);
-      note_image(signed_sum_depth(rows));
+      add_growth_and_image(column[p], k + p, weight[p], step[p]);
+      note_image(order() - k);
     }
     next_ += 2;
     ++result_.two_by_two;
     update_candidates(k, 2);
+  }
+
+  /// growth_i += |l_i| weight, image_i += l_i step, from row `pivot` on; `column` is indexed by rows.
+  void add_growth_and_image(const double* column, Index pivot, double weight, double step) {
+    for (Index i = pivot; i < order(); ++i) {
+      front_.growth[i] += std::fabs(column[i]) * weight;
+      front_.fault.image[i] += column[i] * step;
+    }
   }
 
   /// One more pivot in the image, whose entry of L^T x took `depth` additions.
@@ -205,12 +212,11 @@ class SearchEliminator {
       for (Index begin = batch_begin_; begin < next_;) {
         const Index block = m_.layout.block_of(begin);
         const Index end = std::min(next_, m_.layout.block_end(block));
-        update_trailing(m_,
-                        {m_.column(rest, begin), m_.layout.leading_dimension(block), &scaled(rest, begin),
-                         leading_scaled(), rest, end - begin},
-                        rest, order(), team_);
+        pack_columns(m_.column(rest, begin), m_.layout.leading_dimension(block), &scaled(rest, begin), leading_scaled(),
+                     rest, order(), end - begin, scratch_.beyond);
+        update_trailing(m_, scratch_.beyond, end - begin, rest, team_);
         result_.longest_sum = std::max(result_.longest_sum, end - begin);
-        searches_ += additions_of_a_product(end - begin);
+        ++searches_;
         begin = end;
       }
     }

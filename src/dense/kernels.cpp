@@ -37,7 +37,7 @@ std::atomic<const Kernels*>& chosen() {
 
 const Kernels& kernels() { return *chosen().load(std::memory_order_relaxed); }
 
-void use_reference_kernels() { chosen().store(&isa_generic::table, std::memory_order_relaxed); }
+void use_kernels(const Kernels& set) { chosen().store(&set, std::memory_order_relaxed); }
 
 const Kernels& reference_kernels() { return isa_generic::table; }
 

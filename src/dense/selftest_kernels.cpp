@@ -26,6 +26,27 @@ struct Block {
   }
 };
 
+/// A packed operand of whole numbers may lie anywhere: room for strips of any set.
+struct Packed {
+  Index stride;
+  std::vector<double> values;
+
+  Packed(Index strip, Index rows, Index columns)
+      : stride(strip * columns), values(static_cast<std::size_t>((rows + strip - 1) / strip) * static_cast<std::size_t>(stride), 7.0) {}
+};
+
+Packed as_left(const Kernels& set, const Block& block) {
+  Packed packed(set.row_strip, block.rows, block.columns);
+  set.pack_left(block.a.data(), block.rows, block.rows, block.columns, packed.values.data(), packed.stride);
+  return packed;
+}
+
+Packed as_right(const Kernels& set, const Block& block) {
+  Packed packed(set.column_strip, block.rows, block.columns);
+  set.pack_right(block.a.data(), block.rows, block.rows, block.columns, packed.values.data(), packed.stride);
+  return packed;
+}
+
 bool sums_right(const Kernels& set, const Block& block) {
   auto rows = block.row_zeros(), growth = rows, image = rows, right_rows = rows, right_image = rows;
   auto columns = block.column_zeros(), largest = columns, right_columns = columns, right_largest = columns;
@@ -42,9 +63,10 @@ bool sums_right(const Kernels& set, const Block& block) {
   }
   const double *a = block.a.data(), *weight = block.weight.data();
   set.weighted_abs_sums(a, block.rows, block.rows, block.columns, weight, rows.data(), columns.data());
-  set.add_growth_and_image(a, block.rows, block.rows, block.columns, weight, weight, growth.data(),
-                           image.data());
-  set.column_abs_max(a, block.rows, block.rows, block.columns, largest.data());
+  const Packed left = as_left(set, block), right = as_right(set, block);
+  set.strips_growth_and_image(left.values.data(), left.stride, block.rows, block.columns, weight, weight, growth.data(),
+                              image.data());
+  set.strips_abs_max(right.values.data(), right.stride, block.rows, block.columns, largest.data());
   return rows == right_rows && growth == right_rows && image == right_image && columns == right_columns &&
          largest == right_largest;
 }
@@ -62,9 +84,14 @@ bool quotients_right(const Kernels& set, const Block& block) {
     kind[1] = PivotKind::kTwoSecond;
   }
   std::vector<double> l(block.a.size());
-  set.divide_by_pivots(block.a.data(), block.rows, l.data(), block.rows, block.rows, block.columns,
-                       {diagonal.data(), off_diagonal.data(), kind.data()}, block.sign.data(), size.data(),
-                       total.data());
+  const Packed w = as_right(set, block);
+  Packed left(set.row_strip, block.rows, block.columns);
+  set.divide_strips(w.values.data(), w.stride, block.rows, block.columns,
+                    {diagonal.data(), off_diagonal.data(), kind.data()}, block.sign.data(), left.values.data(),
+                    left.stride, l.data(), block.rows, size.data(), total.data());
+  Block plain = block;
+  plain.a = l;
+  if (left.values != as_left(set, plain).values) return false;
   for (Index k = 0; k < block.columns; ++k) {
     const auto kk = static_cast<std::size_t>(k);
     const bool pair = kind[kk] != PivotKind::kOne;
@@ -76,6 +103,48 @@ bool quotients_right(const Kernels& set, const Block& block) {
       right_total += right * block.sign[static_cast<std::size_t>(i)];
     }
     if (size[kk] != right_size || total[kk] != right_total) return false;
+  }
+  return true;
+}
+
+/// C - L R^T and A F for whole numbers, F upper triangular.
+bool products_right(const Kernels& set, Numbers& numbers, const Block& block) {
+  const Block other(numbers, 1 + block.rows % 37, block.columns);
+  const Packed left = as_left(set, block), right = as_right(set, other);
+  const Index first_row = block.rows % 5, first_column = block.rows % 4 == 0 ? std::min(block.rows % 11, other.rows) : 0;
+  std::vector<double> c(static_cast<std::size_t>(block.rows) * static_cast<std::size_t>(other.rows), 100.0);
+  set.subtract_product(left.values.data(), left.stride, right.values.data(), right.stride, block.columns, block.rows,
+                       other.rows, first_row, first_column, c.data(), block.rows);
+  const auto dot = [&](Index i, Index j, Index depth) {
+    double sum = 0;
+    for (Index p = 0; p < depth; ++p) sum += block.at(i, p) * other.at(j, p);
+    return sum;
+  };
+  for (Index j = 0; j < other.rows; ++j) {
+    for (Index i = std::max(0, j - first_row); i < block.rows; ++i) {
+      const double taken = j < first_column ? 0 : dot(i, j, block.columns);
+      if (c[static_cast<std::size_t>(Offset{j} * block.rows + i)] != 100 - taken) return false;
+    }
+  }
+  const Block factor(numbers, block.columns, block.columns);
+  std::vector<double> upper(std::size_t{kTileWidth} * kTileWidth), packed_factor(upper.size());
+  for (Index j = 0; j < block.columns; ++j) {
+    for (Index p = 0; p <= j; ++p) upper[static_cast<std::size_t>(Offset{p} * kTileWidth + j)] = factor.at(j, p);
+  }
+  set.pack_right(upper.data(), kTileWidth, block.columns, block.columns, packed_factor.data(),
+                 kTileWidth * set.column_strip);
+  Packed w(set.column_strip, block.rows, kTileWidth);
+  set.multiply_by_upper(block.a.data(), block.rows, block.rows, packed_factor.data(), block.columns, w.values.data(),
+                        w.stride);
+  for (Index j = 0; j < block.columns; ++j) {
+    for (Index i = 0; i < block.rows; ++i) {
+      double right_sum = 0;
+      for (Index p = 0; p <= j; ++p) right_sum += block.at(i, p) * factor.at(j, p);
+      const Index strip = set.column_strip;
+      if (w.values[static_cast<std::size_t>(Offset{i / strip} * w.stride + Offset{j} * strip + i % strip)] != right_sum) {
+        return false;
+      }
+    }
   }
   return true;
 }
@@ -119,6 +188,9 @@ std::string exact_kernels(const Kernels& set) {
     if (!sums_right(set, block)) return wrong("sums", rows);
     if (!quotients_right(set, block)) return wrong("quotients", rows);
     if (!copies_right(set, block)) return wrong("copies", rows);
+    for (const Index columns : {1, 5, 16, 33, 64}) {
+      if (!products_right(set, numbers, {numbers, rows, columns})) return wrong("products", rows);
+    }
     if (rows <= kTileWidth && !inverse_right(set, numbers, rows)) return wrong("inverses", rows);
   }
   return {};

@@ -1,8 +1,12 @@
 // The product that takes eliminated columns out of the rest of a front: C -= L (D L^T), lower triangle only.
 #pragma once
 
+#include <vector>
+
+#include "base/buffer.hpp"
 #include "base/threads.hpp"
 #include "dense/block_lower.hpp"
+#include "dense/kernels.hpp"
 
 namespace stanchion {
 
@@ -17,22 +21,52 @@ void for_each_piece(ThreadPool* team, Offset pieces, const Work& work) {
   }
 }
 
-constexpr Index kRowChunk = 512;  ///< rows of one piece of a product
+/// Eliminated columns as operands of products: rows [first_row, order) of L as left and of W = L D as right operand,
+/// up to `capacity` columns. first_row is a multiple of kMostRowStrip, so that strips and column blocks of the front
+/// end together; rows before the first that matters are zero.
+class EliminatedColumns {
+ public:
+  /// Room for rows [first_row, order); what was there is lost. Products write whole strips of columns, so up to
+  /// column_strip - 1 columns after the last one asked for are overwritten.
+  void reset(Index first_row, Index order, Index capacity);
 
-/// Eliminated columns seen as two tall matrices over rows [first_row, order): L in place, W = L D in scratch.
-struct EliminatedColumns {
-  const double* lower;  ///< entry (first_row, 0)
-  Index leading_lower;
-  const double* scaled;  ///< entry (first_row, 0)
-  Index leading_scaled;
-  Index first_row;
-  Index count;
+  Index first_row() const { return first_row_; }
+  Index left_stride() const { return capacity_ * kernels().row_strip; }
+  Index right_stride() const { return capacity_ * kernels().column_strip; }
+  /// Entry of `row`, which must start a strip, in `column`.
+  double* left(Index row, Index column) {
+    const Index strip = kernels().row_strip;
+    return left_.data() + Offset{(row - first_row_) / strip} * left_stride() + Offset{column} * strip;
+  }
+  double* right(Index row, Index column) {
+    const Index strip = kernels().column_strip;
+    return right_.data() + Offset{(row - first_row_) / strip} * right_stride() + Offset{column} * strip;
+  }
+  /// Doubles held, grown to the largest use so far.
+  Offset doubles() const { return left_.size() + right_.size(); }
+
+ private:
+  Index first_row_ = 0, capacity_ = 0;
+  Buffer<double> left_, right_;
 };
 
-/// For every column j in [column_begin, column_end) and row i in [max(j, row_begin), order):
-/// C_ij -= sum_k L_ik W_jk. All rows must be >= columns.first_row.
-/// Cost: count multiply-adds an entry; blocks on the diagonal also compute part of the unused triangle.
-void update_trailing(const BlockLower& front, const EliminatedColumns& columns, Index column_begin, Index column_end,
+/// Doubles that EliminatedColumns needs for a front of `order` rows and `candidates` columns, with any kernels.
+constexpr Offset eliminated_doubles(Index order, Index candidates) {
+  const Index columns = candidates < kFrontBlock ? candidates : kFrontBlock;
+  return Offset{2} * (order + 2 * kMostRowStrip) * (columns + 8);
+}
+
+/// First row of the strips for rows from `row` on.
+constexpr Index strip_begin(Index row) { return row / kMostRowStrip * kMostRowStrip; }
+
+/// Packs rows [row, order) of `count` columns of L and of W, both column-major from `row` on.
+void pack_columns(const double* lower, Index leading_lower, const double* scaled, Index leading_scaled, Index row,
+                  Index order, Index count, EliminatedColumns& columns);
+
+/// For every column j in [column_begin, order) and row i >= j: C_ij -= sum_k L_ik W_jk, k < count.
+/// column_begin must not be before columns.first_row(). Entries of the upper triangle inside a column block may be
+/// overwritten. Cost: count multiply-adds an entry.
+void update_trailing(const BlockLower& front, EliminatedColumns& columns, Index count, Index column_begin,
                      ThreadPool* team);
 
 }  // namespace stanchion

@@ -11,7 +11,7 @@ Request by_second_path(Request request) {
 }
 
 void use_plain_kernels() {
-  use_reference_kernels();
+  use_kernels(reference_kernels());
 }
 
 }  // namespace stanchion

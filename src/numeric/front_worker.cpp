@@ -77,7 +77,7 @@ FrontWorker::~FrontWorker() {
 
 Status FrontWorker::book_arena() {
   const Offset change = arena_.high_water() - booked_doubles_;
-  const Offset scratch = scratch_.scaled.size() - booked_scratch_;
+  const Offset scratch = scratch_.doubles() - booked_scratch_;
   if (change == 0 && scratch == 0) return {};
   booked_doubles_ += change;
   booked_scratch_ += scratch;

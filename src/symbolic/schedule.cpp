@@ -5,7 +5,7 @@
 #include <limits>
 #include <utility>
 
-#include "dense/block_lower.hpp"
+#include "dense/trailing_update.hpp"
 
 namespace stanchion {
 namespace {
@@ -205,8 +205,8 @@ Schedule make_schedule(const AssemblyTree& tree, int workers) {
     widest = std::max(widest, tree.pivots(f));
   }
   schedule.shared_arena_doubles = stack_peak(tree, schedule.shared_fronts, shared, waiting);
-  // A worker's scratch: the panel of the widest front, and its map of all rows.
-  schedule.panel_doubles = Offset{front_layout(largest).padded} * std::min<Index>(widest, kFrontBlock) + tree.rows / 2 + 1;
+  // A worker's scratch: the panels of the widest front, and its map of all rows.
+  schedule.panel_doubles = eliminated_doubles(largest, widest) + eliminated_doubles(kFrontBlock, kTileWidth) + tree.rows / 2 + 1;
   choose_waves(tree, schedule);
   return schedule;
 }

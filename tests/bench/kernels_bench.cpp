@@ -81,32 +81,84 @@ void invert_unit_lower(benchmark::State& state, const Kernels& set) {
   set_flops(state, w * w * w / 3);
 }
 
-void column_abs_max(benchmark::State& state, const Kernels& set) {
+/// Packed random operands of some rows and columns, of any set.
+struct StripsBench {
+  Index left_stride, right_stride;
+  std::vector<double> left, right;
+
+  StripsBench(const Kernels& set, Index rows, Index columns)
+      : left_stride(set.row_strip * columns),
+        right_stride(set.column_strip * columns),
+        left(random_values(static_cast<std::size_t>(rows + kMostRowStrip) * static_cast<std::size_t>(columns))),
+        right(left) {}
+};
+
+void subtract_product(benchmark::State& state, const Kernels& set) {
+  const auto depth = static_cast<Index>(state.range(0));
+  constexpr Index kRows = 192;
+  const StripsBench bench(set, kRows, depth);
+  std::vector<double> c(std::size_t{kRows} * kRows);
+  for (auto _ : state) {
+    set.subtract_product(bench.left.data(), bench.left_stride, bench.right.data(), bench.right_stride, depth, kRows,
+                         kRows, kRows, 0, c.data(), kRows);
+    benchmark::DoNotOptimize(c.data());
+    benchmark::ClobberMemory();
+  }
+  set_flops(state, 2.0 * kRows * kRows * depth);
+}
+
+void multiply_by_upper(benchmark::State& state, const Kernels& set) {
   const auto rows = static_cast<Index>(state.range(0));
-  const auto w = random_values(static_cast<std::size_t>(rows) * kTileWidth);
+  StripsBench bench(set, rows, kTileWidth);
+  const auto a = random_values(static_cast<std::size_t>(rows) * kTileWidth);
+  const std::vector<double> factor(std::size_t{kTileWidth} * kTileWidth, 0.5);
+  for (auto _ : state) {
+    set.multiply_by_upper(a.data(), rows, rows, factor.data(), kTileWidth, bench.right.data(), bench.right_stride);
+    benchmark::DoNotOptimize(bench.right.data());
+    benchmark::ClobberMemory();
+  }
+  set_flops(state, static_cast<double>(rows) * kTileWidth * (kTileWidth + 1));
+}
+
+void strips_abs_max(benchmark::State& state, const Kernels& set) {
+  const auto rows = static_cast<Index>(state.range(0));
+  const StripsBench bench(set, rows, kTileWidth);
   std::vector<double> out(kTileWidth);
   for (auto _ : state) {
-    set.column_abs_max(w.data(), rows, rows, kTileWidth, out.data());
+    set.strips_abs_max(bench.right.data(), bench.right_stride, rows, kTileWidth, out.data());
     benchmark::DoNotOptimize(out.data());
     benchmark::ClobberMemory();
   }
   set_bytes(state, Offset{rows} * kTileWidth);
 }
 
-void divide_by_pivots(benchmark::State& state, const Kernels& set) {
+void divide_strips(benchmark::State& state, const Kernels& set) {
   const auto rows = static_cast<Index>(state.range(0));
-  TileBench bench(kTileWidth, 0);
-  std::vector<double> sign(static_cast<std::size_t>(rows), 1.0), signed_sum(kTileWidth, 0.0);
-  for (auto& d : bench.diagonal) d = 0.5;
-  const auto w = random_values(static_cast<std::size_t>(rows) * kTileWidth);
-  std::vector<double> l(w.size()), sum(kTileWidth);
+  TileBench tile(kTileWidth, 0);
+  StripsBench bench(set, rows, kTileWidth);
+  std::vector<double> sign(static_cast<std::size_t>(rows), 1.0), sum(kTileWidth), signed_sum(kTileWidth);
+  for (auto& d : tile.diagonal) d = 0.5;
   for (auto _ : state) {
-    set.divide_by_pivots(w.data(), rows, l.data(), rows, rows, kTileWidth, bench.pivots(), sign.data(), sum.data(),
-                         signed_sum.data());
-    benchmark::DoNotOptimize(l.data());
+    set.divide_strips(bench.right.data(), bench.right_stride, rows, kTileWidth, tile.pivots(), sign.data(),
+                      bench.left.data(), bench.left_stride, nullptr, 0, sum.data(), signed_sum.data());
+    benchmark::DoNotOptimize(bench.left.data());
     benchmark::ClobberMemory();
   }
   set_bytes(state, Offset{2} * rows * kTileWidth);
+}
+
+void strips_growth_and_image(benchmark::State& state, const Kernels& set) {
+  const auto rows = static_cast<Index>(state.range(0));
+  const StripsBench bench(set, rows, kTileWidth);
+  const std::vector<double> weight(kTileWidth, 1e-16);
+  std::vector<double> growth(static_cast<std::size_t>(rows)), image(growth);
+  for (auto _ : state) {
+    set.strips_growth_and_image(bench.left.data(), bench.left_stride, rows, kTileWidth, weight.data(), weight.data(),
+                                growth.data(), image.data());
+    benchmark::DoNotOptimize(growth.data());
+    benchmark::ClobberMemory();
+  }
+  set_bytes(state, Offset{rows} * kTileWidth);
 }
 
 void weighted_abs_sums(benchmark::State& state, const Kernels& set) {
@@ -155,8 +207,11 @@ int main(int argc, char** argv) {
     add("factor_tile", factor_tile, *sets[s], {8, 16, 32, 64});
     add("factor_tile_pivoted", factor_tile_pivoted, *sets[s], {8, 16, 32, 64});
     add("invert_unit_lower", invert_unit_lower, *sets[s], {8, 16, 32, 64});
-    add("column_abs_max", column_abs_max, *sets[s], {64, 256, 2048});
-    add("divide_by_pivots", divide_by_pivots, *sets[s], {64, 256, 2048});
+    add("subtract_product", subtract_product, *sets[s], {8, 16, 32, 64, 192});
+    add("multiply_by_upper", multiply_by_upper, *sets[s], {64, 192, 2048});
+    add("strips_abs_max", strips_abs_max, *sets[s], {64, 192, 2048});
+    add("divide_strips", divide_strips, *sets[s], {64, 192, 2048});
+    add("strips_growth_and_image", strips_growth_and_image, *sets[s], {64, 192, 2048});
     add("weighted_abs_sums", weighted_abs_sums, *sets[s], {64, 256, 2048});
     add("copy_with_abs_sums", copy_with_abs_sums, *sets[s], {64, 256, 2048});
   }

@@ -21,12 +21,6 @@ std::vector<double> random_values(Random& random, std::size_t count) {
   return values;
 }
 
-std::vector<double> random_signs(Random& random, Index count) {
-  std::vector<double> signs(static_cast<std::size_t>(count));
-  for (double& v : signs) v = test::uniform(random, -1, 1) < 0 ? -1 : 1;
-  return signs;
-}
-
 std::size_t place(Index i, Index k, Index leading) {
   return static_cast<std::size_t>(Offset{k} * leading + i);
 }
@@ -44,102 +38,6 @@ void sweep(const Check& check) {
     }
     check(*sets[s], 257, kTileWidth, 259);
   }
-}
-
-TEST(ColumnAbsMax, EqualsThePlainLoop) {
-  Random random(121);
-  sweep([&](const Kernels& set, Index rows, Index columns, Index leading) {
-    const auto w = random_values(random, place(0, columns, leading));
-    std::vector<double> out(static_cast<std::size_t>(columns) + 1, kGuard);
-    set.column_abs_max(w.data(), leading, rows, columns, out.data());
-    for (Index k = 0; k < columns; ++k) {
-      double largest = 0;
-      for (Index i = 0; i < rows; ++i) largest = std::max(largest, std::fabs(w[place(i, k, leading)]));
-      ASSERT_EQ(out[static_cast<std::size_t>(k)], largest);
-    }
-    ASSERT_EQ(out.back(), kGuard);
-  });
-}
-
-TEST(ColumnAbsMax, NanAndInfinityAnywhereMakeTheirColumnInfinite) {
-  constexpr double kInfinity = std::numeric_limits<double>::infinity();
-  Random random(122);
-  sweep([&](const Kernels& set, Index rows, Index columns, Index leading) {
-    if (rows == 0) return;
-    for (const double bad : {kInfinity, -kInfinity, std::numeric_limits<double>::quiet_NaN()}) {
-      for (const Index row : {Index{0}, rows / 2, rows - 1}) {
-        auto w = random_values(random, place(0, columns, leading));
-        w[place(row, columns - 1, leading)] = bad;
-        std::vector<double> out(static_cast<std::size_t>(columns));
-        set.column_abs_max(w.data(), leading, rows, columns, out.data());
-        for (Index k = 0; k < columns; ++k)
-          ASSERT_EQ(out[static_cast<std::size_t>(k)] == kInfinity, k == columns - 1);
-      }
-    }
-  });
-}
-
-/// Pivots of every kind in turn: 1x1, a pair, zero.
-struct MixedPivots {
-  std::vector<double> diagonal, off_diagonal;
-  std::vector<PivotKind> kind;
-
-  MixedPivots(Random& random, Index columns)
-      : diagonal(static_cast<std::size_t>(columns)),
-        off_diagonal(diagonal.size()),
-        kind(diagonal.size(), PivotKind::kOne) {
-    for (std::size_t k = 0; k < diagonal.size(); ++k) {
-      diagonal[k] = test::uniform(random, 0.1, 0.6) * (random() % 2 ? 1 : -1);
-      if (k % 4 == 1 && k + 1 < diagonal.size()) {
-        kind[k] = PivotKind::kTwoFirst;
-        kind[k + 1] = PivotKind::kTwoSecond;
-        off_diagonal[k] = random() % 2 ? 1 : -1.5;
-        diagonal[k + 1] = test::uniform(random, -0.6, 0.6);
-        ++k;
-      } else if (k % 4 == 3) {
-        kind[k] = PivotKind::kZero;
-        diagonal[k] = 0;
-      }
-    }
-  }
-};
-
-TEST(DivideByPivots, SolvesEveryRowAndSumsTheColumns) {
-  Random random(123);
-  sweep([&](const Kernels& set, Index rows, Index columns, Index leading) {
-    MixedPivots d(random, columns);
-    const auto w = random_values(random, place(0, columns, leading));
-    const Index leading_l = leading + 2;
-    std::vector<double> l(place(0, columns, leading_l), kGuard), sum(static_cast<std::size_t>(columns), 10.0);
-    std::vector<double> signed_sum(static_cast<std::size_t>(columns), -3.0);
-    const auto sign = random_signs(random, rows);
-    set.divide_by_pivots(w.data(), leading, l.data(), leading_l, rows, columns,
-                         {d.diagonal.data(), d.off_diagonal.data(), d.kind.data()}, sign.data(), sum.data(),
-                         signed_sum.data());
-    for (Index k = 0; k < columns; ++k) {
-      const auto kk = static_cast<std::size_t>(k);
-      double expected_sum = 10, expected_signed_sum = -3;
-      for (Index i = 0; i < rows; ++i) {
-        const double value = l[place(i, k, leading_l)];
-        expected_sum += std::fabs(value);
-        expected_signed_sum += value * sign[static_cast<std::size_t>(i)];
-        if (d.kind[kk] == PivotKind::kZero) {
-          ASSERT_EQ(value, 0);
-        } else if (d.kind[kk] == PivotKind::kOne) {
-          const double exact = w[place(i, k, leading)] / d.diagonal[kk];
-          ASSERT_NEAR(value, exact, 0x1p-51 * std::fabs(exact));
-        } else if (d.kind[kk] == PivotKind::kTwoFirst) {
-          const double next = l[place(i, k + 1, leading_l)], b = d.off_diagonal[kk];
-          const double size = 0x1p-48 * std::fabs(b) * (std::fabs(value) + std::fabs(next));
-          ASSERT_NEAR(d.diagonal[kk] * value + b * next, w[place(i, k, leading)], size);
-          ASSERT_NEAR(b * value + d.diagonal[kk + 1] * next, w[place(i, k + 1, leading)], size);
-        }
-      }
-      ASSERT_NEAR(sum[kk], expected_sum, 1e-13 * expected_sum);
-      ASSERT_NEAR(signed_sum[kk], expected_signed_sum, 1e-13 * expected_sum);
-      for (Index i = rows; i < leading_l; ++i) ASSERT_EQ(l[place(i, k, leading_l)], kGuard);
-    }
-  });
 }
 
 TEST(WeightedAbsSums, EqualsThePlainLoopToRounding) {
@@ -207,54 +105,6 @@ TEST(CopyWithAbsSums, CopiesForwardEvenOntoItself) {
       }
     }
   });
-}
-
-TEST(AddGrowthAndImage, EqualsThePlainLoopToRounding) {
-  Random random(128);
-  sweep([&](const Kernels& set, Index rows, Index columns, Index leading) {
-    const auto a = random_values(random, place(0, columns, leading));
-    const auto weight = random_values(random, static_cast<std::size_t>(columns));
-    const auto step = random_values(random, static_cast<std::size_t>(columns));
-    std::vector<double> growth(static_cast<std::size_t>(rows) + 1, kGuard), image(growth);
-    set.add_growth_and_image(a.data(), leading, rows, columns, weight.data(), step.data(), growth.data(),
-                             image.data());
-    for (Index i = 0; i < rows; ++i) {
-      double expected_growth = kGuard, expected_image = kGuard, size = std::fabs(kGuard);
-      for (Index k = 0; k < columns; ++k) {
-        const double value = a[place(i, k, leading)];
-        expected_growth += std::fabs(value) * weight[static_cast<std::size_t>(k)];
-        expected_image += value * step[static_cast<std::size_t>(k)];
-        size += std::fabs(value) * (std::fabs(weight[static_cast<std::size_t>(k)]) +
-                                    std::fabs(step[static_cast<std::size_t>(k)]));
-      }
-      ASSERT_NEAR(growth[static_cast<std::size_t>(i)], expected_growth, 1e-13 * size);
-      ASSERT_NEAR(image[static_cast<std::size_t>(i)], expected_image, 1e-13 * size);
-    }
-    ASSERT_EQ(growth.back(), kGuard);
-    ASSERT_EQ(image.back(), kGuard);
-  });
-}
-
-TEST(KernelSets, AgreeWithTheReferenceToRounding) {
-  Random random(127);
-  const Kernels* sets[3];
-  const int count = kernel_sets(sets);
-  for (Index rows = 1; rows <= 64; ++rows) {
-    const auto w = random_values(random, place(0, 8, rows));
-    MixedPivots d(random, 8);
-    std::vector<double> expected(w.size());
-    for (int s = 0; s < count; ++s) {
-      std::vector<double> l(w.size()), sum(8, 0.0), signed_sum(8, 0.0), sign(w.size(), 1.0);
-      sets[s]->divide_by_pivots(w.data(), rows, l.data(), rows, rows, 8,
-                                {d.diagonal.data(), d.off_diagonal.data(), d.kind.data()}, sign.data(),
-                                sum.data(), signed_sum.data());
-      if (s == 0) expected = l;
-      double largest = 0;
-      for (const double v : expected) largest = std::max(largest, std::fabs(v));
-      for (std::size_t i = 0; i < l.size(); ++i)
-        ASSERT_NEAR(l[i], expected[i], 1e-14 * largest) << sets[s]->isa;
-    }
-  }
 }
 
 }  // namespace

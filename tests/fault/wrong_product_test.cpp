@@ -39,6 +39,7 @@ void spoil_once(const test::Prepared& prepared, Wrong wrong, std::int64_t call, 
 }
 
 std::int64_t products_of(const test::Prepared& prepared, bool definite) {
+  use_kernels(test::spoiled_kernels());
   FactorOptions options;
   options.definite = definite;
   test::mend_product();
@@ -90,6 +91,7 @@ TEST(WrongProduct, GivesAnInternalErrorAndNoAnswer) {
   for (const bool definite_first : {true, false}) {
     OffsetOptions options;
     options.definite_first = definite_first;
+    use_kernels(test::spoiled_kernels());
     test::spoil_product(Wrong::kDroppedTerm, 0, 5, true);
     const auto answer = certify_by_offsets(prepared.analysis, prepared.shifted(0), options, *prepared.pool);
     test::mend_product();
