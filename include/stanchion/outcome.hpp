@@ -204,7 +204,13 @@ struct ForecastOutcome {
   double factor_flops = 0;
   Offset peak_bytes_count = 0;  ///< factor discarded
   Offset peak_bytes_solve = 0;  ///< factor kept
-  double seconds = 0;
+  double seconds = 0;           ///< of one count, as it is likely to be certified
+  double seconds_otherwise = 0;  ///< when that does not settle it
+  double factorization_seconds = 0;
+  Index factorizations = 0;     ///< of the likely way
+  bool relative_test = false;   ///< it ends with the relative test
+  double flops_per_second = 0;  ///< measured: one thread, in large fronts
+  std::string assumption;       ///< what `seconds` rests on, in words
 };
 
 struct InputRecord {

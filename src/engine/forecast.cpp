@@ -1,16 +1,44 @@
+#include <fmt/format.h>
+
 #include "base/clock.hpp"
+#include "engine/host_rates.hpp"
 #include "engine/prepared_pencil.hpp"
+#include "extended/factorize.hpp"
 
 namespace stanchion {
 namespace {
 
-/// Sustained rates assumed for the time: operations a second and thread in large fronts, and seconds a front.
-/// Rough on purpose; the report calls it likely, not certain.
-constexpr double kFlopsPerSecond = 2.5e10, kSecondsPerFront = 4e-6;
+/// "2 factorizations of 0.21 s each and the relative test".
+std::string in_words(Index factorizations, double seconds_each, bool relative) {
+  const std::string each =
+      seconds_each < 0.001 ? std::string("less than 1 ms") : fmt::format("{:.2g} s", seconds_each);
+  std::string text = factorizations == 1 ? "one factorization of " + each
+                                         : fmt::format("{} factorizations of {} each", factorizations, each);
+  return relative ? text + " and the relative test" : text;
+}
 
-double likely_seconds(const Analysis& analysis, int threads) {
-  const double fronts = analysis.tree.fronts;
-  return (analysis.forecast.front_flops / kFlopsPerSecond + fronts * kSecondsPerFront) / threads;
+/// K is expected definite, alone or at its smaller loads, unless multipliers or a mass say otherwise.
+bool definite_expected(const Request& request, bool multipliers) {
+  return !multipliers && !request.input.mass;
+}
+
+void forecast_time(const PreparedPencil& pencil, const Request& request, bool definite,
+                   ForecastOutcome& forecast) {
+  const Analysis& analysis = pencil.analysis();
+  const HostRates rates = measure_host();
+  const bool extended = request.precision == Precision::kExtended;
+  const double each = extended ? extended_seconds_forecast(analysis) : factorization_seconds(analysis, rates);
+  const double test = relative_test_seconds(analysis, pencil.entries(), rates);
+  const LikelyWork work = pencil.likely_work(definite);
+  forecast.factorization_seconds = each;
+  forecast.factorizations = work.factorizations;
+  forecast.relative_test = work.relative;
+  forecast.seconds = work.factorizations * each + (work.relative ? test : 0);
+  forecast.seconds_otherwise = forecast.seconds + work.more_if_not * each + (work.relative_if_not ? test : 0);
+  forecast.flops_per_second = rates.fronts.back().flops / rates.fronts.back().seconds;
+  forecast.assumption =
+      in_words(work.factorizations, each, work.relative) +
+      (definite ? ", for the matrix is expected to be definite" : ", for the matrix may be indefinite");
 }
 
 }  // namespace
@@ -23,6 +51,7 @@ Result<Outcome> run_forecast(const Request& request, const RunContext& context) 
   uncapped.memory_cap_bytes.reset();  // a forecast answers even when the run itself would be refused
   auto model = read_model(uncapped, context, pool, outcome);
   if (!model.ok()) return model.status();
+  const bool definite = definite_expected(request, !model->multipliers.empty());
   auto pencil = PreparedPencil::make(*model, false, uncapped, context, pool, outcome);
   if (!pencil.ok()) return pencil.status();
   const StructureForecast& structure = pencil->analysis().forecast;
@@ -31,7 +60,7 @@ Result<Outcome> run_forecast(const Request& request, const RunContext& context) 
   forecast.factor_flops = structure.factor_flops;
   forecast.peak_bytes_count = outcome.memory.forecast;
   forecast.peak_bytes_solve = outcome.memory.forecast + structure.peak_bytes_solve - structure.peak_bytes_count;
-  forecast.seconds = likely_seconds(pencil->analysis(), pool.size());
+  forecast_time(*pencil, request, definite, forecast);
   outcome.forecast = forecast;
   finish_outcome(outcome, watch.seconds());
   return outcome;

@@ -182,6 +182,15 @@ ShiftedMatrix PreparedPencil::second_alone() const {
   return matrix;
 }
 
+LikelyWork PreparedPencil::likely_work(bool definite_first) const {
+  CertifyOptions options;
+  options.offsets.definite_first = definite_first;
+  options.offsets.resolution = resolution_;
+  options.risk = extended_ ? nullptr : risk_.get();
+  options.most_factor_bytes = bytes_for_factor();
+  return stanchion::likely_work(analysis_, options);
+}
+
 TripletMatrix PreparedPencil::formed(double factor, double offset) const {
   const ShiftedMatrix matrix = combination(factor);
   TripletMatrix triplets{family_.rows, {}, {}, {}};

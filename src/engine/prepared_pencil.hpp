@@ -68,6 +68,10 @@ class PreparedPencil {
   /// factorization in double forms it; in elimination order.
   TripletMatrix formed(double factor, double offset) const;
 
+  /// See likely_work() of inertia/certify.hpp.
+  LikelyWork likely_work(bool definite_first) const;
+  Offset entries() const { return family_.entries(); }
+
   /// The second matrix alone; `digits`: every matrix that rounds to it.
   Result<CertifiedInertia> certify_second(std::optional<int> digits, ThreadPool& pool, Outcome& outcome);
 

@@ -69,6 +69,10 @@ Result<CertifiedInertia> by_relative_test(const Analysis& analysis, const Shifte
 /// Below this many operations a second factorization costs less than anyone notices, and a proof says more.
 constexpr double kProofIsCheap = 5e9;
 
+bool proof_is_cheap(const Analysis& analysis) {
+  return analysis.forecast.front_flops < kProofIsCheap;
+}
+
 class Certifier {
  public:
   Certifier(const Analysis& analysis, const ShiftedMatrix& matrix, const CertifyOptions& options, ThreadPool& pool)
@@ -83,7 +87,7 @@ class Certifier {
       if (settled(definite)) return with_costs(std::move(definite));
       offsets.definite_only = offsets.definite_first = false;
     }
-    if (analysis_.forecast.front_flops < kProofIsCheap) {
+    if (proof_is_cheap(analysis_)) {
       auto both = certify_by_offsets(analysis_, matrix_, offsets, pool_);
       if (settled(both)) return with_costs(std::move(both));
       auto relative = by_relative_test(analysis_, matrix_, options_, pool_);
@@ -120,6 +124,17 @@ class Certifier {
 };
 
 }  // namespace
+
+LikelyWork likely_work(const Analysis& analysis, const CertifyOptions& options) {
+  const bool allowed = relative_allowed(analysis, options), two_first = !allowed || proof_is_cheap(analysis);
+  const LikelyWork indefinite{two_first ? 2 : 1,
+                              two_first && !allowed ? 0
+                              : two_first           ? 1
+                                                    : 2,
+                              !two_first, allowed && two_first};
+  if (!options.offsets.definite_first) return indefinite;
+  return {1, indefinite.factorizations, false, indefinite.relative};
+}
 
 Result<CertifiedInertia> certify_inertia(const Analysis& analysis, const ShiftedMatrix& matrix,
                                          const CertifyOptions& options, ThreadPool& pool) {

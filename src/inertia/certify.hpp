@@ -14,6 +14,13 @@ struct CertifyOptions {
   const ShiftedMatrix* second = nullptr;  ///< of the pencil: asks for the radius free of eigenvalues, too
 };
 
+/// What certify_inertia() will do when its first choice succeeds, and what more when it does not.
+struct LikelyWork {
+  Index factorizations = 0, more_if_not = 0;
+  bool relative = false, relative_if_not = false;  ///< with the relative test on a kept factor
+};
+LikelyWork likely_work(const Analysis& analysis, const CertifyOptions& options);
+
 /// Definite expected: one factorization with an offset, without pivoting, is the cheapest proof. Otherwise the two
 /// offsets where their second factorization is cheap, else the relative test (one factorization, kept) where memory and
 /// risk allow; L is stored in single precision where only that fits. What leaves zero directions escalates to the other; the offsets have the last word, at a resolution.

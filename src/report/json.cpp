@@ -16,7 +16,13 @@ Json json_of(const ForecastOutcome& forecast) {
           {"factor_flops", json_of(forecast.factor_flops)},
           {"peak_bytes_count", forecast.peak_bytes_count},
           {"peak_bytes_solve", forecast.peak_bytes_solve},
-          {"seconds", json_of(forecast.seconds)}};
+          {"seconds", json_of(forecast.seconds)},
+          {"seconds_otherwise", json_of(forecast.seconds_otherwise)},
+          {"factorization_seconds", json_of(forecast.factorization_seconds)},
+          {"factorizations", forecast.factorizations},
+          {"relative_test", forecast.relative_test},
+          {"flops_per_second", json_of(forecast.flops_per_second)},
+          {"assumption", forecast.assumption}};
 }
 
 /// The vector itself unless a file holds it.

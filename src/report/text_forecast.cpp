@@ -12,6 +12,10 @@ void write_forecast(Page& page, const Outcome& outcome) {
       forecast.seconds < 0.001 ? "less than 1 ms" : "about " + duration_in_words(forecast.seconds),
       bytes_in_words(forecast.peak_bytes_count)));
   page.blank();
+  page.row("likely work", fmt::format("{}; {} if that does not settle it", forecast.assumption,
+                                      duration_in_words(forecast.seconds_otherwise)));
+  page.row("measured", flops_in_words(forecast.flops_per_second) +
+                           "/s a thread in large fronts, just now; a busy machine is slower");
   page.row("factor", fmt::format("{} entries, {}", grouped(forecast.factor_entries),
                                  flops_in_words(forecast.factor_flops)));
   page.row("memory",

@@ -67,6 +67,49 @@ TEST(Certify, SingularEndsAtAResolutionAfterARefusedAttemptThatIsCharged) {
   EXPECT_EQ(risk.attempts(), 1);
 }
 
+TEST(Certify, TheLikelyWorkIsWhatIsDone) {
+  struct Expected {
+    SymmetricMatrix matrix;
+    bool definite_first;
+    Offset factor_bytes;
+    Index factorizations;
+    bool relative;
+  };
+  const Offset plenty = Offset{1} << 40;
+  Expected cases[] = {{laplacian(20, 20, 20), true, plenty, 1, false},
+                      {laplacian(36, 35, 34, 0.41), false, plenty, 1, true},
+                      {laplacian(9, 8, 7, 0.5), false, 1000, 2, false},
+                      {laplacian(9, 8, 7, 0.5), false, plenty, 2, false}};
+  for (const Expected& expected : cases) {
+    RiskBudget risk(1e-6);
+    CertifyOptions options;
+    options.risk = &risk;
+    options.most_factor_bytes = expected.factor_bytes;
+    options.offsets.definite_first = expected.definite_first;
+    const auto prepared = prepare(expected.matrix, 2);
+    const LikelyWork likely = likely_work(prepared.analysis, options);
+    const auto found = certify(prepared, options);
+    EXPECT_EQ(likely.factorizations, expected.factorizations);
+    EXPECT_EQ(likely.relative, expected.relative);
+    EXPECT_EQ(found.factorizations, likely.factorizations);
+    EXPECT_EQ(found.certificate.level == Level::kStatistical, likely.relative);
+  }
+  // What comes after the likely way: a definite attempt that fails is followed by two offsets, those by the
+  // test.
+  RiskBudget risk(1e-6);
+  CertifyOptions options;
+  options.risk = &risk;
+  options.most_factor_bytes = plenty;
+  options.offsets.definite_first = true;
+  const LikelyWork indefinite = likely_work(prepare(laplacian(9, 8, 7, 2.1)).analysis, options);
+  EXPECT_EQ(indefinite.more_if_not, 2);
+  EXPECT_FALSE(indefinite.relative_if_not);
+  options.offsets.definite_first = false;
+  const LikelyWork singular = likely_work(prepare(laplacian(8, 8, 8, 6)).analysis, options);
+  EXPECT_EQ(singular.more_if_not, 1);
+  EXPECT_TRUE(singular.relative_if_not);
+}
+
 TEST(Certify, AskedResolutionIsKept) {
   CertifyOptions options;
   options.offsets.resolution = 1e-3;

@@ -37,6 +37,8 @@ TEST(Text, TheVerdictComesFirst) {
   EXPECT_EQ(first_line(samples::counted_in_part()),
             "Not every count could be certified: critical factors between 0 and f.");
   EXPECT_EQ(first_line(samples::forecast()), "One count will take about 0.42 s and 12 MB of memory.");
+  EXPECT_TRUE(says(samples::forecast(), "one factorization of 0.42 s; 1.3 s if that does not settle it"));
+  EXPECT_TRUE(says(samples::forecast(), "25 Gflop/s a thread in large fronts"));
 }
 
 TEST(Text, TitleAndReferenceStandAboveIt) {

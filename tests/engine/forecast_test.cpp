@@ -1,0 +1,52 @@
+// Forecasts of time: measured rates and the work that a count will take.
+#include "engine/host_rates.hpp"
+#include "engine/model_files.hpp"
+#include "support/factored.hpp"
+#include "support/generators.hpp"
+
+namespace stanchion {
+namespace {
+
+using namespace test;
+
+TEST(HostRates, LargerFrontsTakeLongerAndRunFaster) {
+  const HostRates rates = measure_host();
+  for (std::size_t k = 1; k < rates.fronts.size(); ++k) {
+    EXPECT_GT(rates.fronts[k].flops, rates.fronts[k - 1].flops);
+    EXPECT_GT(rates.fronts[k].seconds, rates.fronts[k - 1].seconds);
+  }
+  const auto rate = [](const HostRates::FrontTime& front) { return front.flops / front.seconds; };
+  EXPECT_GT(rate(rates.fronts.back()), rate(rates.fronts.front()));
+  EXPECT_GT(rates.seconds_per_tested_entry, 0);
+}
+
+TEST(HostRates, MoreWorkTakesLonger) {
+  const HostRates rates = measure_host();
+  const auto small = prepare(laplacian(8, 8, 8)), large = prepare(laplacian(20, 20, 20));
+  EXPECT_GT(factorization_seconds(small.analysis, rates), 0);
+  EXPECT_GT(factorization_seconds(large.analysis, rates), 5 * factorization_seconds(small.analysis, rates));
+  EXPECT_GT(relative_test_seconds(large.analysis, large.family.entries(), rates),
+            5 * relative_test_seconds(small.analysis, small.family.entries(), rates));
+}
+
+TEST(Forecast, TheSecondsAreThoseOfTheLikelyWork) {
+  ModelFiles files;
+  Request request;
+  request.input.stiffness = files.matrix("K.mtx", laplacian(12, 12, 12));
+  const ForecastOutcome definite = *answer(run_forecast(request, {})).forecast;
+  EXPECT_EQ(definite.factorizations, 1);
+  EXPECT_FALSE(definite.relative_test);
+  EXPECT_EQ(definite.seconds, definite.factorization_seconds);
+  EXPECT_GE(definite.seconds_otherwise, 2.9 * definite.seconds);
+  EXPECT_GT(definite.flops_per_second, 1e7);
+  EXPECT_NE(definite.assumption.find("expected to be definite"), std::string::npos);
+  request.input.mass = files.matrix("M.mtx", diagonal(std::vector<double>(1728, 1.0)));
+  request.pencil = Pencil::kMass;
+  const ForecastOutcome shifted = *answer(run_forecast(request, {})).forecast;
+  EXPECT_EQ(shifted.factorizations, 2);
+  EXPECT_NE(shifted.assumption.find("may be indefinite"), std::string::npos);
+  EXPECT_DOUBLE_EQ(shifted.seconds, 2 * shifted.factorization_seconds);
+}
+
+}  // namespace
+}  // namespace stanchion
