@@ -273,6 +273,7 @@ struct Outcome {
   std::string struck_sha256;      ///< of the equations struck, from 1, ascending, one a line; empty when none
   std::string scaling_sha256;     ///< of the exponents of the scaling, by equation analysed, one a line
   std::optional<std::string> title, reference;
+  std::optional<int> digits;  ///< of the input files, as the request states them
   std::optional<CheckOutcome> check;
   std::optional<CountOutcome> count;
   std::optional<SweepOutcome> sweep;

@@ -13,8 +13,12 @@
 #include "model/exit_code.hpp"
 #include "model/names.hpp"
 #include "model/version.hpp"
+#include "report/csv_report.hpp"
+#include "report/html.hpp"
 #include "report/json.hpp"
+#include "report/junit.hpp"
 #include "report/text.hpp"
+#include "report/vtu.hpp"
 
 namespace stanchion::cli {
 namespace {
@@ -27,6 +31,12 @@ void declare_output_options(Arguments& arguments, OutputOptions& options, Questi
   }
   arguments.text("--json", options.json, "FILE",
                  "the whole answer as JSON; - for standard output, nothing else");
+  arguments.text("--html", options.html, "FILE", "one page for the screen and for paper, with drawings; stands alone");
+  arguments.text("--junit", options.junit, "FILE", "JUnit XML, for build servers");
+  arguments.text("--csv", options.csv, "FILE", "the numbers as one table");
+  if (question == Question::kCheck || question == Question::kLocate) {
+    arguments.text("--vtu", options.vtu, "FILE", "nodes, links, motions and digits as a VTK grid (needs --nodes)");
+  }
   if (question != Question::kForecast && question != Question::kLocate) {
     arguments.text("--certificate", options.certificate, "FILE",
                    "what was claimed and how, for `stanchion recheck FILE`");
@@ -53,7 +63,7 @@ Result<Judgement> build_judgement(const OutputOptions& output, bool symmetric_pa
 
 /// Every file that is to be written, opened ahead of the work.
 struct Targets {
-  std::optional<AnswerFile> json, certificate, witness;
+  std::optional<AnswerFile> json, html, junit, csv, vtu, certificate, witness;
   std::vector<CertifiedFile> support_files;  ///< for the certificate
 };
 
@@ -67,7 +77,13 @@ Status open_targets(const OutputOptions& output, const InputRequest& input, Targ
   const std::vector<std::string> read = files_read(input);
   for (const Status& status :
        {refuse_dash("--certificate", output.certificate), refuse_dash("--witness", output.witness),
+        refuse_dash("--html", output.html), refuse_dash("--junit", output.junit), refuse_dash("--csv", output.csv),
+        refuse_dash("--vtu", output.vtu),
         check_targets_differ({{"--json", output.json},
+                              {"--html", output.html},
+                              {"--junit", output.junit},
+                              {"--csv", output.csv},
+                              {"--vtu", output.vtu},
                               {"--certificate", output.certificate},
                               {"--witness", output.witness},
                               {"--log", output.log}})}) {
@@ -80,6 +96,10 @@ Status open_targets(const OutputOptions& output, const InputRequest& input, Targ
     return opened.status();
   };
   if (Status status = open("--json", output.json, targets.json); !status.ok()) return status;
+  if (Status status = open("--html", output.html, targets.html); !status.ok()) return status;
+  if (Status status = open("--junit", output.junit, targets.junit); !status.ok()) return status;
+  if (Status status = open("--csv", output.csv, targets.csv); !status.ok()) return status;
+  if (Status status = open("--vtu", output.vtu, targets.vtu); !status.ok()) return status;
   if (Status status = open("--certificate", output.certificate, targets.certificate); !status.ok())
     return status;
   if (Status status = open("--witness", output.witness, targets.witness); !status.ok()) return status;
@@ -111,7 +131,30 @@ Status deliver_witness(const OutputOptions& output, const std::optional<std::str
   return {};
 }
 
-Status deliver(const Request& request, const OutputOptions& output, Targets& targets, Outcome& outcome) {
+/// The grid, or a warning that there is nothing to put on it; the file then does not appear.
+Status deliver_grid(const OutputOptions& output, Targets& targets, Outcome& outcome) {
+  if (!targets.vtu) return {};
+  if (outcome.located && !outcome.located->picture.node.empty()) return targets.vtu->commit(to_vtu(*outcome.located));
+  const Warning none{"no-grid", "there is nothing to put on a grid: no coordinates are known, or nothing was certified",
+                     *output.vtu + " (not written)"};
+  outcome.warnings.push_back(none);
+  if (output.quiet) print_failure({StatusKind::kOk, none.code, none.message, none.place});
+  return {};
+}
+
+/// The reports for people, spreadsheets and build servers.
+Status deliver_reports(Targets& targets, const Outcome& outcome, ExitCode code) {
+  const bool good = code == kExitGood, unresolved = code == kExitUnresolved;
+  if (targets.html) {
+    if (Status status = targets.html->commit(to_html(outcome, good, unresolved)); !status.ok()) return status;
+  }
+  if (targets.junit) {
+    if (Status status = targets.junit->commit(to_junit(outcome, good, unresolved)); !status.ok()) return status;
+  }
+  return targets.csv ? targets.csv->commit(to_csv(outcome)) : Status{};
+}
+
+Status deliver(const Request& request, const OutputOptions& output, Targets& targets, Outcome& outcome, ExitCode code) {
   if (Status status = deliver_witness(output, request.input.dofs, targets, outcome); !status.ok())
     return status;
   if (targets.certificate) {
@@ -119,6 +162,8 @@ Status deliver(const Request& request, const OutputOptions& output, Targets& tar
     if (Status status = targets.certificate->commit(certificate_to_json(document)); !status.ok())
       return status;
   }
+  if (Status status = deliver_grid(output, targets, outcome); !status.ok()) return status;
+  if (Status status = deliver_reports(targets, outcome, code); !status.ok()) return status;
   if (targets.json) {
     if (Status status = targets.json->commit(to_json(outcome)); !status.ok()) return status;
   }
@@ -155,6 +200,10 @@ Result<int> QuestionCommand::run(const Call& call) {
   auto request = build_request(request_, question_);
   if (!request.ok()) return request.status();
   request->want_witness = output_.witness.has_value();
+  if (output_.vtu && question_ == Question::kCheck && !request->want_location) {
+    return Status::bad_usage("contradiction", "a grid shows located motions, and none are asked for", "--vtu",
+                             "add --locate, or use stanchion locate");
+  }
   const auto judgement = build_judgement(output_, request_.symmetric_part, question_);
   if (!judgement.ok()) return judgement.status();
   Targets targets;
@@ -173,8 +222,8 @@ Result<int> QuestionCommand::run(const Call& call) {
   outcome->arguments = call.arguments;
   outcome->title = output_.title;
   outcome->reference = output_.reference;
-  if (Status status = deliver(*request, output_, targets, *outcome); !status.ok()) return status;
   const ExitCode code = exit_code(*outcome, *judgement);
+  if (Status status = deliver(*request, output_, targets, *outcome, code); !status.ok()) return status;
   log->line(fmt::format("answered, exit code {}", static_cast<int>(code)));
   return code;
 }

@@ -720,7 +720,7 @@ class Diagnostician {
     if (inertia_.zero > 0 || inertia_.negative > 0) return;  // no digits are left along a zero direction
     const std::vector<double> digits = estimate_digits_lost(s_, factor_, kAccuracyVectors, in_.seed);
     LocalAccuracy accuracy;
-    accuracy.method = "estimate from Gaussian vectors";
+    accuracy.method = "Estimate from Gaussian vectors";
     accuracy.vectors = kAccuracyVectors;
     accuracy.attention = in_.options.attention_digits;
     accuracy.alarm = in_.options.alarm_digits;

@@ -2,6 +2,8 @@
 
 #include <fmt/format.h>
 
+#include <cctype>
+
 namespace stanchion {
 namespace {
 
@@ -33,10 +35,8 @@ std::string loose_part(const CauseFacts& f) {
     text = fmt::format("The whole model ({}) is not held: {}.", nodes_in_words(f.nodes), free);
   } else if (f.whole_part) {
     text = fmt::format("{}: this part shares no stiffness with the rest and is not held; {}.", around(f), free);
-    text[0] = static_cast<char>(std::toupper(text[0]));
   } else {
     text = fmt::format("{}: attached to the rest, but not against every motion; {}.", around(f), free);
-    text[0] = static_cast<char>(std::toupper(text[0]));
   }
   if (f.by_connectivity) text += " Told by connectivity alone, for no coordinates are known.";
   if (!f.seam.empty()) text += " " + f.seam + ": a seam that was likely meant to be joined.";
@@ -53,7 +53,6 @@ std::string mechanism(const CauseFacts& f) {
                        "do not strain).",
                        around(f), f.count == 1 ? "a motion meets" : fmt::format("{} independent motions meet", f.count));
   }
-  text[0] = static_cast<char>(std::toupper(text[0]));
   if (!f.separated) text += " Several causes may be mixed in here; the nodes are those that move most.";
   if (!f.seam.empty()) text += " " + f.seam + ".";
   return text;
@@ -61,7 +60,9 @@ std::string mechanism(const CauseFacts& f) {
 
 }  // namespace
 
-std::string explanation_of(const CauseFacts& f) {
+namespace {
+
+std::string sentence_of(const CauseFacts& f) {
   switch (f.cause) {
     case Cause::kLoosePart:
       return loose_part(f);
@@ -111,6 +112,14 @@ std::string explanation_of(const CauseFacts& f) {
       break;
   }
   return f.unresolved_because;
+}
+
+}  // namespace
+
+std::string explanation_of(const CauseFacts& f) {
+  std::string text = sentence_of(f);
+  if (!text.empty()) text[0] = static_cast<char>(std::toupper(static_cast<unsigned char>(text[0])));
+  return text;
 }
 
 std::string remedy_of(const CauseFacts& f) {

@@ -84,6 +84,7 @@ Outcome begin_outcome(const char* command, const Request& request, Question ques
   outcome.not_checked = not_checked(request, question);
   outcome.risk_allowed = request.risk;
   outcome.seed = request.seed;
+  outcome.digits = request.digits;
   return outcome;
 }
 

@@ -2,6 +2,8 @@
 
 #include <fmt/format.h>
 
+#include <utility>
+
 #include "report/numbers.hpp"
 
 namespace stanchion {
@@ -58,8 +60,16 @@ std::string location_headline(const LocateOutcome& located) {
                        exact(located.weak_below));
   }
   std::string text = located.directions.size() == 1 ? "One entry" : fmt::format("{} entries", located.directions.size());
-  text += fmt::format(", for {} and {}", counted(located.negative, "negative direction"),
-                      counted(located.zero, "zero direction"));
+  Index weak = 0, couplings = 0;
+  for (const Direction& direction : located.directions) {
+    if (direction.sign == 1) (direction.cause == Cause::kOverStiffCoupling ? couplings : weak) += direction.count;
+  }
+  std::string kinds;
+  for (const auto& [count, noun] : {std::pair{located.negative, "negative direction"}, std::pair{located.zero, "zero direction"},
+                                    std::pair{weak, "weak direction"}, std::pair{couplings, "over-stiff coupling"}}) {
+    if (count > 0) kinds += (kinds.empty() ? "" : ", ") + counted(count, noun);
+  }
+  text += " for " + kinds;
   if (located.not_located > 0) {
     text += fmt::format("; {} more {} counted but not shown", grouped(located.not_located),
                         located.not_located == 1 ? "is" : "are");

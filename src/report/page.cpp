@@ -31,23 +31,28 @@ void Page::wrapped(const std::string& lead, const std::string& text) {
 }
 
 void Page::sentence(const std::string& text) {
+  blocks_.push_back({Kind::kSentence, {}, text, {}, 0});
   wrapped("", text);
 }
 
 void Page::title(const std::string& text) {
   blank();
+  blocks_.push_back({Kind::kTitle, {}, text, {}, 0});
   text_ += text + "\n";
 }
 
 void Page::row(const std::string& label, const std::string& text) {
+  blocks_.push_back({Kind::kRow, label, text, {}, 0});
   wrapped(fmt::format("  {:<{}}", label, kLabelWidth), text);
 }
 
 void Page::bullet(const std::string& text) {
+  blocks_.push_back({Kind::kBullet, {}, text, {}, 0});
   wrapped("  - ", text);
 }
 
 void Page::table(const std::vector<std::vector<std::string>>& rows, std::size_t to_the_right) {
+  blocks_.push_back({Kind::kTable, {}, {}, rows, to_the_right});
   std::vector<std::size_t> widths;
   for (const auto& row : rows) {
     widths.resize(std::max(widths.size(), row.size()), 0);
@@ -64,6 +69,7 @@ void Page::table(const std::vector<std::vector<std::string>>& rows, std::size_t 
 }
 
 void Page::blank() {
+  blocks_.push_back({});
   text_ += "\n";
 }
 

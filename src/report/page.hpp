@@ -1,4 +1,5 @@
-// A page of plain text, at most 100 columns wide: sentences, labelled rows, bullets and small tables.
+// A page of plain text, at most 100 columns wide: sentences, labelled rows, bullets and small tables. What was put on
+// it stays known block by block, so that other renderings say the same.
 #pragma once
 
 #include <string>
@@ -11,6 +12,14 @@ namespace stanchion {
 class Page {
  public:
   static constexpr std::size_t kWidth = 100;
+
+  enum class Kind { kSentence, kTitle, kRow, kBullet, kTable, kBlank };
+  struct Block {
+    Kind kind = Kind::kBlank;
+    std::string label, text;                      ///< of a row; `text` alone for sentences, titles, bullets
+    std::vector<std::vector<std::string>> cells;  ///< of a table
+    std::size_t to_the_right = 0;
+  };
 
   /// A sentence at the left margin.
   void sentence(const std::string& text);
@@ -26,11 +35,13 @@ class Page {
   void blank();
 
   const std::string& text() const { return text_; }
+  const std::vector<Block>& blocks() const { return blocks_; }
 
  private:
   void wrapped(const std::string& lead, const std::string& text);
 
   std::string text_;
+  std::vector<Block> blocks_;
 };
 
 }  // namespace stanchion

@@ -106,17 +106,25 @@ std::string backing_in_words(Level level, const std::optional<double>& failure_p
   return "nothing: no certificate";
 }
 
-std::string to_text(const Outcome& outcome) {
-  Page page;
-  write_heading(page, outcome);
+void write_answer(Page& page, const Outcome& outcome) {
   if (outcome.check) write_check(page, outcome);
-  if (outcome.located) write_locate(page, outcome);
   if (outcome.count) write_count(page, outcome);
   if (outcome.forecast) write_forecast(page, outcome);
-  page.blank();
+}
+
+void write_provenance(Page& page, const Outcome& outcome) {
   write_inputs(page, outcome);
   if (!outcome.forecast) write_work(page, outcome);
   write_time(page, outcome);
+}
+
+std::string to_text(const Outcome& outcome) {
+  Page page;
+  write_heading(page, outcome);
+  write_answer(page, outcome);
+  if (outcome.located) write_locate(page, outcome);
+  page.blank();
+  write_provenance(page, outcome);
   write_warnings(page, outcome.warnings);
   write_not_checked(page, outcome);
   return page.text();

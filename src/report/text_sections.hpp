@@ -9,6 +9,12 @@
 
 namespace stanchion {
 
+/// The answer of the command, whichever it is, without causes.
+void write_answer(Page& page, const Outcome& outcome);
+
+/// Inputs, work, memory, time, machine and version.
+void write_provenance(Page& page, const Outcome& outcome);
+
 /// Verdict sentence, inertia, and what backs them.
 void write_check(Page& page, const Outcome& outcome);
 

@@ -1,0 +1,123 @@
+#include "report/csv_report.hpp"
+
+#include <fmt/format.h>
+
+#include "model/names.hpp"
+#include "report/numbers.hpp"
+
+namespace stanchion {
+namespace {
+
+std::string field(const std::string& text) {
+  if (text.find_first_of(",\"\r\n") == std::string::npos) return text;
+  std::string quoted = "\"";
+  for (const char c : text) {
+    if (c == '"') quoted += '"';
+    quoted += c;
+  }
+  return quoted + "\"";
+}
+
+class Table {
+ public:
+  void row(const std::string& table, const std::string& item, const std::string& quantity, const std::string& value) {
+    text_ += fmt::format("{},{},{},{}\n", field(table), field(item), field(quantity), field(value));
+  }
+  void row(const std::string& table, const std::string& item, const std::string& quantity, double value) {
+    row(table, item, quantity, exact(value));
+  }
+  void row(const std::string& table, const std::string& item, const std::string& quantity, Index value) {
+    row(table, item, quantity, std::to_string(value));
+  }
+  std::string text() && { return std::move(text_); }
+
+ private:
+  std::string text_ = "table,item,quantity,value\n";
+};
+
+void add_check(Table& table, const CheckOutcome& check) {
+  table.row("check", "K", "verdict", name_of(check.verdict));
+  table.row("check", "K", "negative", check.inertia.negative);
+  table.row("check", "K", "zero", check.inertia.zero);
+  table.row("check", "K", "positive", check.inertia.positive);
+  table.row("check", "K", "undecided", check.inertia.undecided);
+  table.row("check", "K", "level", name_of(check.certificate.level));
+  if (check.certificate.resolution) table.row("check", "K", "resolution", *check.certificate.resolution);
+}
+
+std::string name_of_dof(const DofShare& d) { return d.node ? fmt::format("{} {}", *d.node, d.dof) : d.dof; }
+
+void add_location(Table& table, const LocateOutcome& located) {
+  for (std::size_t k = 0; k < located.directions.size(); ++k) {
+    const Direction& d = located.directions[k];
+    const std::string item = std::to_string(k + 1);
+    table.row("directions", item, "kind", name_of(d.cause));
+    table.row("directions", item, "sign", static_cast<Index>(d.sign));
+    table.row("directions", item, "count", d.count);
+    table.row("directions", item, "energy", d.energy);
+    table.row("directions", item, "moving_nodes", d.moving_nodes);
+    table.row("directions", item, "explanation", d.explanation);
+    table.row("directions", item, "remedy", d.remedy);
+    for (const DofShare& share : d.nodes) table.row("shares", item, name_of_dof(share), share.share);
+  }
+  table.row("location", "all", "not_located", located.not_located);
+  for (std::size_t k = 0; k < located.components.size(); ++k) {
+    const std::string item = std::to_string(k + 1);
+    table.row("components", item, "nodes", located.components[k].nodes);
+    table.row("components", item, "rows", located.components[k].rows);
+    table.row("components", item, "nullity", located.components[k].nullity);
+  }
+  if (!located.accuracy) return;
+  table.row("accuracy", "all", "typical", located.accuracy->typical);
+  table.row("accuracy", "all", "largest", located.accuracy->largest);
+  for (const auto& [from, count] : located.accuracy->histogram) table.row("accuracy", "histogram", exact(from), count);
+  for (const DofShare& worst : located.accuracy->worst) table.row("accuracy", "worst", name_of_dof(worst), worst.share);
+}
+
+}  // namespace
+
+std::string to_csv(const Outcome& outcome) {
+  Table table;
+  if (outcome.check) add_check(table, *outcome.check);
+  if (outcome.count) {
+    for (const ShiftCount& count : outcome.count->counts) {
+      const std::string item = exact(count.shift);
+      if (count.below) table.row("counts", item, "below", *count.below);
+      table.row("counts", item, "least", count.below_range.first);
+      table.row("counts", item, "most", count.below_range.second);
+      table.row("counts", item, "level", name_of(count.level));
+    }
+  }
+  if (outcome.bracket) {
+    for (std::size_t k = 0; k < outcome.bracket->critical.size(); ++k) {
+      const CriticalValue& value = outcome.bracket->critical[k];
+      const std::string item = std::to_string(k + 1);
+      table.row("critical", item, "value", value.value);
+      table.row("critical", item, "low", value.low);
+      table.row("critical", item, "high", value.high);
+      table.row("critical", item, "multiplicity", value.multiplicity);
+      table.row("critical", item, "level", name_of(value.level));
+    }
+  }
+  if (outcome.audit) {
+    for (std::size_t k = 0; k < outcome.audit->gaps.size(); ++k) {
+      const AuditGap& gap = outcome.audit->gaps[k];
+      const std::string item = std::to_string(k + 1);
+      table.row("gaps", item, "low", gap.low);
+      table.row("gaps", item, "high", gap.high);
+      table.row("gaps", item, "listed", gap.listed);
+      table.row("gaps", item, "counted", gap.counted);
+    }
+  }
+  if (outcome.forecast) {
+    table.row("forecast", "factor", "seconds", outcome.forecast->seconds);
+    table.row("forecast", "factor", "flops", outcome.forecast->factor_flops);
+    table.row("forecast", "factor", "peak_bytes_count", std::to_string(outcome.forecast->peak_bytes_count));
+    table.row("forecast", "factor", "peak_bytes_solve", std::to_string(outcome.forecast->peak_bytes_solve));
+  }
+  if (outcome.located) add_location(table, *outcome.located);
+  for (const Warning& warning : outcome.warnings) table.row("warnings", warning.code, warning.place, warning.message);
+  return std::move(table).text();
+}
+
+}  // namespace stanchion

@@ -1,0 +1,191 @@
+#include "report/html.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+
+#include "model/version.hpp"
+#include "report/cause_words.hpp"
+#include "report/html_parts.hpp"
+#include "report/html_style.hpp"
+#include "report/markup.hpp"
+#include "report/numbers.hpp"
+#include "report/text_sections.hpp"
+
+namespace stanchion {
+namespace {
+
+/// A beam on two posts that stands level, one that has come off, one that is not drawn to its end.
+std::string verdict_mark(bool good, bool unresolved) {
+  const char* beam = unresolved ? "M6 20h22M36 20h4M46 20h4M56 20h4" : good ? "M6 20h54" : "M6 32L60 10";
+  const char* posts = unresolved ? "M16 22v34M50 30v4M50 42v4M50 52v4" : good ? "M16 22v34M50 22v34" : "M16 34v22M50 24v32";
+  return fmt::format("<svg class=\"{}\" viewBox=\"0 0 66 66\" role=\"img\" aria-label=\"{}\"><path d=\"{}\" stroke=\"currentColor\" "
+                     "stroke-width=\"6\" stroke-linecap=\"round\" fill=\"none\"/><path d=\"{}M4 60h58\" stroke=\"currentColor\" "
+                     "stroke-width=\"3\" stroke-linecap=\"round\" fill=\"none\"/></svg>",
+                     unresolved ? "open" : good ? "clear" : "heed", unresolved ? "unresolved" : good ? "good" : "not good", beam, posts);
+}
+
+/// Level, risk and digits in one sentence.
+std::string standing(const Outcome& outcome) {
+  Level level = Level::kProved;
+  bool any = false;
+  const auto weigh = [&](Level one) {
+    level = any && level < one ? level : one;
+    any = true;
+  };
+  if (outcome.check) weigh(outcome.check->certificate.level);
+  if (outcome.count) {
+    for (const ShiftCount& count : outcome.count->counts) weigh(count.level);
+  }
+  std::string text;
+  if (any) {
+    text = level == Level::kProved        ? "Backed by proof throughout"
+           : level == Level::kStatistical ? "Backed by statistics where not by proof"
+                                          : "Not certified in every part";
+    text += outcome.risk > 0 ? fmt::format("; the risk that any statement is wrong is at most {} (allowed: {})", rounded(outcome.risk),
+                                           rounded(outcome.risk_allowed))
+                             : "; no statement rests on chance";
+  }
+  if (outcome.forecast && !any) return "Nothing was factored: figures from the pattern alone.";
+  text += text.empty() ? "The numbers of the input" : "; the numbers of the input";
+  text += outcome.digits ? fmt::format(" count to {} decimal digits.", *outcome.digits) : " count as exact.";
+  return text;
+}
+
+std::string question_in_words(const Outcome& outcome) {
+  const auto has = [&](const char* role) {
+    return std::any_of(outcome.inputs.begin(), outcome.inputs.end(), [&](const InputRecord& input) { return input.role == role; });
+  };
+  const std::string& c = outcome.command;
+  if (c == "check") return outcome.located ? "Is K positive definite? If not: where, and why?" : "Is K positive definite?";
+  if (c == "locate") return "Which nodes carry the zero, negative and weak directions of K, and why?";
+  if (c == "forecast") return "What will a factorization of K take?";
+  const std::string subject = has("geometric") ? "critical factors of the pencil of K and G" : has("mass") ? "eigenvalues of K - s M" : "eigenvalues of K";
+  if (c == "count") return "How many " + subject + " lie below the values asked?";
+  if (c == "sweep") return "How does the number of " + subject + " grow over the range?";
+  if (c == "bracket") return "Between which bounds do the " + subject + " lie?";
+  if (c == "audit") return "Is the list of " + subject + " complete in its range?";
+  return "What was asked: " + c;
+}
+
+std::string question_to_html(const Outcome& outcome) {
+  std::string rows;
+  const auto row = [&rows](const char* label, const std::string& text) {
+    rows += fmt::format("<dt>{}</dt><dd>{}</dd>\n", label, text);
+  };
+  row("question", escaped(question_in_words(outcome)));
+  std::string command = program_name();
+  for (const std::string& argument : outcome.arguments) {
+    const bool plain = argument.find_first_of(" \t\"'$*?;&|<>()") == std::string::npos && !argument.empty();
+    command += " " + (plain ? argument : "'" + argument + "'");
+  }
+  row("as typed", fmt::format("<code>{}</code>", escaped(command)));
+  const bool geometric = std::any_of(outcome.inputs.begin(), outcome.inputs.end(), [](const InputRecord& i) { return i.role == "geometric"; });
+  if (geometric) {
+    const bool minus = std::find(outcome.arguments.begin(), outcome.arguments.end(), "minus") != outcome.arguments.end();
+    row("sign of G", minus ? "K - f G: the file was written for the minus sign" : "K + f G");
+  }
+  if (outcome.count && !outcome.count->counts.empty()) {
+    const auto [low, high] = std::minmax_element(outcome.count->counts.begin(), outcome.count->counts.end(),
+                                                 [](const ShiftCount& a, const ShiftCount& b) { return a.shift < b.shift; });
+    row("range", fmt::format("from {} to {}", exact(low->shift), exact(high->shift)));
+  }
+  row("equations", fmt::format("{} in the file, {} struck out, {} analysed", grouped(Offset{outcome.rows_analysed} + outcome.rows_struck),
+                               grouped(outcome.rows_struck), grouped(outcome.rows_analysed)));
+  if (outcome.check && outcome.check->constrained)
+    row("constrained", fmt::format("by {}", counted(outcome.check->constrained->multipliers, "multiplier")));
+  return band("Question", "<dl>\n" + rows + "</dl>\n");
+}
+
+/// The steps of the counts, where there are several.
+std::string staircase(const Outcome& outcome) {
+  if (!outcome.count || outcome.count->counts.size() < 2) return "";
+  std::vector<std::pair<double, Index>> steps;
+  for (const ShiftCount& count : outcome.count->counts) steps.emplace_back(count.shift, count.below.value_or(count.below_range.first));
+  std::sort(steps.begin(), steps.end());
+  constexpr double kWidth = 640, kHeight = 200, kLeft = 46, kBase = 164, kTop = 22;
+  const double low = std::min(0.0, steps.front().first), high = std::max(0.0, steps.back().first);
+  Index most = 1;
+  for (const auto& step : steps) most = std::max(most, step.second);
+  const auto x = [&](double s) { return kLeft + (kWidth - 2 * kLeft) * (high > low ? (s - low) / (high - low) : 0.5); };
+  const auto y = [&](Index n) { return kBase - (kBase - kTop) * n / most; };
+  std::string svg = fmt::format("<svg class=\"chart\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Counts over shifts\">\n", kWidth, kHeight);
+  svg += fmt::format("<path class=\"c-axis\" d=\"M{:.0f} {:.0f}H{:.0f}\"/>\n", kLeft, kBase, kWidth - kLeft);
+  double label_x = -100;
+  for (const auto& [shift, count] : steps) {
+    svg += fmt::format("<path class=\"c-step\" d=\"M{0:.1f} {1:.1f}V{2:.1f}\"/><circle class=\"c-bar\" cx=\"{0:.1f}\" cy=\"{2:.1f}\" r=\"4\"/>\n", x(shift), kBase, y(count));
+    if (x(shift) - label_x < 34) continue;
+    label_x = x(shift);
+    svg += fmt::format("<text class=\"c-small\" x=\"{0:.1f}\" y=\"{1:.1f}\" text-anchor=\"middle\">{2}</text><text class=\"c-small\" x=\"{0:.1f}\" "
+                       "y=\"{3:.0f}\" text-anchor=\"middle\">{4:.4g}</text>\n",
+                       x(shift), y(count) - 8, count, kBase + 16, shift);
+  }
+  return svg + fmt::format("<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">shift; above it the count</text></svg>\n", kWidth / 2, kHeight - 4);
+}
+
+std::string inputs_to_html(const Outcome& outcome) {
+  std::string html = "<table><tr><th>input</th><th>file</th><th class=\"right\">equations</th><th class=\"right\">entries</th><th>SHA-256</th></tr>\n";
+  for (const InputRecord& input : outcome.inputs) {
+    html += fmt::format("<tr><td>{}{}</td><td>{}</td><td class=\"right\">{}</td><td class=\"right\">{}</td><td class=\"digest\">{}</td></tr>\n",
+                        escaped(input.role), input.factor ? ", times " + exact(*input.factor) : "", escaped(input.path), grouped(input.rows),
+                        grouped(input.entries), escaped(input.sha256));
+  }
+  html += "</table>\n";
+  Page page;
+  write_provenance(page, outcome);
+  return html + blocks_to_html(page.blocks(), outcome.inputs.size(), page.blocks().size());
+}
+
+}  // namespace
+
+std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
+  Page answer;
+  write_answer(answer, outcome);
+  const auto& blocks = answer.blocks();
+  std::size_t lead = 0;  // the sentences that open the answer
+  while (lead < blocks.size() && blocks[lead].kind == Page::Kind::kSentence) ++lead;
+  const std::string title = outcome.title.value_or(outcome.inputs.empty() ? std::string("Result") : outcome.inputs.front().path);
+
+  std::string html = "<!DOCTYPE html>\n<html lang=\"en\"><head><meta charset=\"utf-8\">\n"
+                     "<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n";
+  html += fmt::format("<title>{}</title>\n<style>{}</style></head>\n<body><main>\n", escaped(title), kHtmlStyle);
+  html += fmt::format("<header class=\"top\"><h1>{}</h1><p>{}{} {}, {}</p></header>\n", escaped(title),
+                      outcome.reference ? "Reference: " + escaped(*outcome.reference) + " · " : "", program_name(), program_version(),
+                      escaped(outcome.command));
+  html += "<div class=\"verdict\">" + verdict_mark(good, unresolved) + "<div>\n";
+  for (std::size_t k = 0; k < lead; ++k) {
+    html += fmt::format("<p{}>{}</p>\n", k == 0 ? " class=\"lead\"" : "", escaped(blocks[k].text));
+  }
+  if (outcome.located) html += fmt::format("<p>{}</p>\n", escaped(location_headline(*outcome.located)));
+  html += fmt::format("<p class=\"stand\">{}</p></div></div>\n", escaped(standing(outcome)));
+  html += question_to_html(outcome);
+  if (outcome.located) html += band("Where and why", causes_to_html(*outcome.located));
+  // What follows up to the first title belongs to the answer; titles open sections of their own.
+  std::string heading = "Answer";
+  std::string chart = staircase(outcome);
+  for (std::size_t k = lead; k < blocks.size();) {
+    std::size_t end = k;
+    while (end < blocks.size() && blocks[end].kind != Page::Kind::kTitle) ++end;
+    html += band(heading, chart + blocks_to_html(blocks, k, end));
+    chart.clear();
+    if (end < blocks.size()) heading = blocks[end].text;
+    k = end + 1;
+  }
+  if (outcome.located) {
+    html += band("Local accuracy", accuracy_to_html(*outcome.located));
+    html += band("Connected parts", parts_to_html(*outcome.located));
+    html += band("Mass", mass_to_html(*outcome.located));
+  }
+  Page warnings;
+  write_warnings(warnings, outcome.warnings);
+  html += band("Warnings", blocks_to_html(warnings.blocks(), 0, warnings.blocks().size()));
+  html += band("Inputs, work, time", inputs_to_html(outcome));
+  std::string open;
+  for (const std::string& sentence : outcome.not_checked) open += "<li>" + escaped(sentence) + "</li>\n";
+  html += band("Not checked", open.empty() ? open : "<ul>\n" + open + "</ul>\n");
+  html += fmt::format("<footer>Made by {} {}. This page stands alone: it loads nothing and runs nothing.</footer>\n</main></body></html>\n",
+                      program_name(), program_version());
+  return html;
+}
+
+}  // namespace stanchion

@@ -1,0 +1,12 @@
+// Text inside HTML, SVG and XML.
+#pragma once
+
+#include <string>
+#include <string_view>
+
+namespace stanchion {
+
+/// & < > " ' as entities; control characters and bytes that are no UTF-8 as the replacement character.
+std::string escaped(std::string_view text);
+
+}  // namespace stanchion

@@ -1,0 +1,449 @@
+#include "report/model_view.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+#include <numeric>
+#include <unordered_set>
+
+#include "report/markup.hpp"
+
+namespace stanchion {
+namespace {
+
+using Triple = std::array<double, 3>;
+
+constexpr double kWidth = 640, kHeight = 400, kMargin = 34;
+constexpr double kCloseWidth = 340;
+constexpr double kMotion = 0.11;           ///< of the model's size, drawn length of the largest motion
+constexpr double kCloseMotion = 0.32;      ///< of the close-up's radius
+constexpr double kCell = 2.6, kLinkCell = 2.0;  ///< pixels that hold one dot, or one end of a line
+constexpr std::size_t kMostLines = 16000, kMostArrows = 26, kCloseNodes = 18;
+constexpr double kApart = 46;  ///< pixels between arrows
+
+double dot(const Triple& a, const Triple& b) { return a[0] * b[0] + a[1] * b[1] + a[2] * b[2]; }
+Triple cross(const Triple& a, const Triple& b) {
+  return {a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0]};
+}
+Triple unit(const Triple& a) {
+  const double size = std::sqrt(dot(a, a));
+  return size > 0 ? Triple{a[0] / size, a[1] / size, a[2] / size} : Triple{0, 0, 1};
+}
+
+/// Eigenvectors of a symmetric 3 x 3 matrix, ascending, by Jacobi rotations.
+std::array<Triple, 3> axes_of(std::array<Triple, 3> a) {
+  std::array<Triple, 3> v{Triple{1, 0, 0}, Triple{0, 1, 0}, Triple{0, 0, 1}};
+  for (int sweep = 0; sweep < 30; ++sweep) {
+    for (std::size_t p = 0; p < 2; ++p) {
+      for (std::size_t q = p + 1; q < 3; ++q) {
+        if (std::fabs(a[p][q]) < 1e-15) continue;
+        const double theta = (a[q][q] - a[p][p]) / (2 * a[p][q]);
+        const double t = (theta >= 0 ? 1.0 : -1.0) / (std::fabs(theta) + std::hypot(theta, 1.0));
+        const double c = 1 / std::hypot(t, 1.0), s = t * c;
+        for (std::size_t k = 0; k < 3; ++k) {
+          const double x = a[k][p], y = a[k][q];
+          a[k][p] = c * x - s * y;
+          a[k][q] = s * x + c * y;
+        }
+        for (std::size_t k = 0; k < 3; ++k) {
+          const double x = a[p][k], y = a[q][k];
+          a[p][k] = c * x - s * y;
+          a[q][k] = s * x + c * y;
+        }
+        for (std::size_t k = 0; k < 3; ++k) {
+          const double x = v[p][k], y = v[q][k];
+          v[p][k] = c * x - s * y;
+          v[q][k] = s * x + c * y;
+        }
+      }
+    }
+  }
+  std::array<std::size_t, 3> order{0, 1, 2};
+  std::sort(order.begin(), order.end(), [&](std::size_t x, std::size_t y) { return a[x][x] < a[y][y]; });
+  return {v[order[0]], v[order[1]], v[order[2]]};
+}
+
+struct Point {
+  double x = 0, y = 0;
+};
+
+/// From the model to the page.
+class Projection {
+ public:
+  Projection(const ViewAxes& view, const std::vector<Triple>& shown, double width, double height, double margin)
+      : view_(view) {
+    double low_x = INFINITY, high_x = -INFINITY, low_y = INFINITY, high_y = -INFINITY;
+    for (const Triple& p : shown) {
+      const double x = dot(p, view.right), y = dot(p, view.up);
+      low_x = std::min(low_x, x);
+      high_x = std::max(high_x, x);
+      low_y = std::min(low_y, y);
+      high_y = std::max(high_y, y);
+    }
+    if (shown.empty()) low_x = high_x = low_y = high_y = 0;
+    const double span_x = std::max(high_x - low_x, 1e-12), span_y = std::max(high_y - low_y, 1e-12);
+    scale_ = std::min((width - 2 * margin) / span_x, (height - 2 * margin) / span_y);
+    x_ = width / 2 - scale_ * (low_x + high_x) / 2;
+    y_ = height / 2 + scale_ * (low_y + high_y) / 2;
+  }
+
+  Point at(const Triple& p) const { return {x_ + scale_ * dot(p, view_.right), y_ - scale_ * dot(p, view_.up)}; }
+  double scale() const { return scale_; }
+
+ private:
+  ViewAxes view_;
+  double scale_ = 1, x_ = 0, y_ = 0;
+};
+
+std::uint64_t cell_of(const Point& p, double size) {
+  const auto x = static_cast<std::int64_t>(std::floor(p.x / size)), y = static_cast<std::int64_t>(std::floor(p.y / size));
+  return static_cast<std::uint64_t>(x) * 0x9E3779B97F4A7C15ULL ^ static_cast<std::uint64_t>(y);
+}
+
+class Drawer {
+ public:
+  Drawer(const Picture& picture, const std::vector<std::array<float, 3>>& shape, const std::vector<Mark>& marks)
+      : picture_(picture), shape_(shape), marks_(marks) {}
+
+  ModelDrawing run() {
+    ModelDrawing drawing;
+    if (picture_.place.empty()) return drawing;
+    drawing.view = view_ = best_view(picture_, shape_);
+    measure();
+    drawing.exaggeration = kMotion;
+    drawing.overview = overview(drawing);
+    if (!marks_.empty()) drawing.close_up = close_up();
+    return drawing;
+  }
+
+ private:
+  void measure() {
+    Triple low = picture_.place[0], high = low;
+    for (const Triple& p : picture_.place) {
+      for (std::size_t d = 0; d < 3; ++d) {
+        low[d] = std::min(low[d], p[d]);
+        high[d] = std::max(high[d], p[d]);
+      }
+    }
+    size_ = std::sqrt(std::pow(high[0] - low[0], 2) + std::pow(high[1] - low[1], 2) + std::pow(high[2] - low[2], 2));
+    if (!(size_ > 0)) size_ = 1;
+  }
+
+  bool moves(std::size_t node) const {
+    if (shape_.empty()) return false;
+    const auto& u = shape_[node];
+    return std::fabs(u[0]) + std::fabs(u[1]) + std::fabs(u[2]) > 1e-3F;
+  }
+
+  Triple moved(std::size_t node, double length) const {
+    Triple p = picture_.place[node];
+    if (shape_.empty()) return p;
+    for (std::size_t d = 0; d < 3; ++d) p[d] += length * static_cast<double>(shape_[node][d]);
+    return p;
+  }
+
+  static std::string open(double width, const std::string& label) {
+    return fmt::format("<svg class=\"view\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"{}\">\n", width, kHeight,
+                       escaped(label));
+  }
+
+  std::string overview(ModelDrawing& drawing) const {
+    const double length = kMotion * size_;
+    std::vector<Triple> shown = picture_.place;
+    for (std::size_t node = 0; node < picture_.place.size(); ++node) {
+      if (moves(node)) shown.push_back(moved(node, length));
+    }
+    const Projection to(view_, shown, kWidth, kHeight, kMargin);
+    std::string svg = open(kWidth, "The model with the motion drawn on it");
+    svg += lines(to, 0, "v-link", [](std::size_t, std::size_t) { return true; });
+    svg += dots(to, drawing);
+    svg += lines(to, length, "v-moved", [this](std::size_t a, std::size_t b) { return moves(a) || moves(b); });
+    if (picture_.links.empty()) svg += moved_dots(to, length);
+    svg += arrows(to, length);
+    svg += labels(to, kWidth);
+    svg += triad();
+    svg += scale_bar(to, kWidth);
+    return svg + "</svg>\n";
+  }
+
+  /// Lines between linked nodes, those that fall on one another drawn once.
+  template <class Choose>
+  std::string lines(const Projection& to, double length, const char* kind, const Choose& choose) const {
+    std::unordered_set<std::uint64_t> seen;
+    std::string path;
+    std::size_t count = 0;
+    for (const auto& [a, b] : picture_.links) {
+      const auto i = static_cast<std::size_t>(a), j = static_cast<std::size_t>(b);
+      if (!choose(i, j)) continue;
+      const Point p = to.at(moved(i, length)), q = to.at(moved(j, length));
+      const std::uint64_t one = cell_of(p, kLinkCell), other = cell_of(q, kLinkCell);
+      if (one == other || !seen.insert(one * 31 + other * 31 + (one ^ other)).second) continue;
+      path += fmt::format("M{:.1f} {:.1f}L{:.1f} {:.1f}", p.x, p.y, q.x, q.y);
+      if (++count == kMostLines) break;
+    }
+    return path.empty() ? "" : fmt::format("<path class=\"{}\" d=\"{}\"/>\n", kind, path);
+  }
+
+  std::string dots(const Projection& to, ModelDrawing& drawing) const {
+    std::unordered_set<std::uint64_t> seen;
+    std::string still, moving;
+    const bool linked = !picture_.links.empty();
+    for (std::size_t node = 0; node < picture_.place.size(); ++node) {
+      const Point p = to.at(picture_.place[node]);
+      const bool m = moves(node);
+      if (!seen.insert(cell_of(p, kCell) * 2 + (m ? 1 : 0)).second) {
+        ++drawing.left_out;
+        continue;
+      }
+      ++drawing.drawn;
+      if (linked && !m) continue;
+      (m ? moving : still) += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
+    }
+    std::string svg;
+    if (!still.empty()) svg += fmt::format("<path class=\"v-dot\" d=\"{}\"/>\n", still);
+    if (!moving.empty()) svg += fmt::format("<path class=\"v-part\" d=\"{}\"/>\n", moving);
+    return svg;
+  }
+
+  std::string moved_dots(const Projection& to, double length) const {
+    std::unordered_set<std::uint64_t> seen;
+    std::string path;
+    for (std::size_t node = 0; node < picture_.place.size(); ++node) {
+      if (!moves(node)) continue;
+      const Point p = to.at(moved(node, length));
+      if (seen.insert(cell_of(p, kCell)).second) path += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
+    }
+    return path.empty() ? "" : fmt::format("<path class=\"v-ghost\" d=\"{}\"/>\n", path);
+  }
+
+  static std::string arrow(const Point& p, const Point& q) {
+    const double dx = q.x - p.x, dy = q.y - p.y, size = std::hypot(dx, dy);
+    if (size < 5) return "";
+    const double ux = dx / size, uy = dy / size, head = std::min(7.0, size / 2);
+    return fmt::format("M{:.1f} {:.1f}L{:.1f} {:.1f}M{:.1f} {:.1f}L{:.1f} {:.1f}L{:.1f} {:.1f}", p.x, p.y, q.x, q.y,
+                       q.x - head * ux - 0.45 * head * uy, q.y - head * uy + 0.45 * head * ux, q.x, q.y,
+                       q.x - head * ux + 0.45 * head * uy, q.y - head * uy - 0.45 * head * ux);
+  }
+
+  /// A few arrows, spread over the page rather than over the numbering.
+  std::string arrows(const Projection& to, double length) const {
+    if (shape_.empty()) return "";
+    std::vector<std::size_t> order;
+    for (std::size_t node = 0; node < picture_.place.size(); ++node) {
+      if (moves(node)) order.push_back(node);
+    }
+    std::stable_sort(order.begin(), order.end(), [&](std::size_t a, std::size_t b) { return size_of(a) > size_of(b); });
+    std::vector<Point> taken;
+    std::string path;
+    for (const std::size_t node : order) {
+      const Point p = to.at(picture_.place[node]);
+      const bool near = std::any_of(taken.begin(), taken.end(),
+                                    [&](const Point& t) { return std::hypot(t.x - p.x, t.y - p.y) < kApart; });
+      if (near) continue;
+      const std::string one = arrow(p, to.at(moved(node, length)));
+      if (one.empty()) continue;
+      path += one;
+      taken.push_back(p);
+      if (taken.size() == kMostArrows) break;
+    }
+    return path.empty() ? "" : fmt::format("<path class=\"v-arrow\" d=\"{}\"/>\n", path);
+  }
+
+  float size_of(std::size_t node) const {
+    const auto& u = shape_[node];
+    return u[0] * u[0] + u[1] * u[1] + u[2] * u[2];
+  }
+
+  std::string labels(const Projection& to, double width) const {
+    std::string svg;
+    double last_y = -100;
+    for (std::size_t k = 0; k < marks_.size(); ++k) {
+      const Point p = to.at(picture_.place[marks_[k].node]);
+      const bool right = p.x < width * 0.62;
+      double y = p.y - 14;
+      if (std::fabs(y - last_y) < 16) y = last_y + 17;
+      y = std::clamp(y, 16.0, kHeight - 12);
+      last_y = y;
+      const double x = right ? p.x + 22 : p.x - 22;
+      svg += fmt::format("<circle class=\"v-ring\" cx=\"{:.1f}\" cy=\"{:.1f}\" r=\"6.5\"/>"
+                         "<path class=\"v-lead\" d=\"M{:.1f} {:.1f}L{:.1f} {:.1f}\"/>"
+                         "<text class=\"v-label\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"{}\">{}</text>\n",
+                         p.x, p.y, right ? p.x + 5 : p.x - 5, p.y - 4, right ? x - 3 : x + 3, y - 4, x, y,
+                         right ? "start" : "end", escaped(marks_[k].text));
+    }
+    return svg;
+  }
+
+  std::string triad() const {
+    std::string svg = "<g class=\"v-triad\">";
+    const char* names[] = {"x", "y", "z"};
+    for (std::size_t d = 0; d < 3; ++d) {
+      const double x = view_.right[d], y = view_.up[d];
+      if (std::hypot(x, y) < 0.12) continue;
+      svg += fmt::format("<path d=\"M34 {:.0f}l{:.1f} {:.1f}\"/><text x=\"{:.1f}\" y=\"{:.1f}\">{}</text>", kHeight - 34,
+                         20 * x, -20 * y, 34 + 28 * x - 3, kHeight - 34 - 28 * y + 4, names[d]);
+    }
+    return svg + "</g>\n";
+  }
+
+  static std::string scale_bar(const Projection& to, double width) {
+    const double wanted = 90 / to.scale(), power = std::pow(10, std::floor(std::log10(wanted)));
+    const double length = (wanted / power >= 5 ? 5 : wanted / power >= 2 ? 2 : 1) * power;
+    const double pixels = length * to.scale();
+    return fmt::format("<g class=\"v-bar\"><path d=\"M{:.1f} {:.0f}v6h{:.1f}v-6\"/><text x=\"{:.1f}\" y=\"{:.0f}\" "
+                       "text-anchor=\"end\">{:.4g} in the unit of the coordinates</text></g>\n",
+                       width - 14 - pixels, kHeight - 18, pixels, width - 14, kHeight - 22, length);
+  }
+
+  /// The first mark's node with its nearest neighbours, their numbers, and the motion once more.
+  std::string close_up() const {
+    const std::size_t centre = marks_.front().node;
+    const Triple& c = picture_.place[centre];
+    const auto distance = [&](std::size_t node) {
+      const Triple& p = picture_.place[node];
+      return std::pow(p[0] - c[0], 2) + std::pow(p[1] - c[1], 2) + std::pow(p[2] - c[2], 2);
+    };
+    std::vector<std::size_t> near(picture_.place.size());
+    std::iota(near.begin(), near.end(), std::size_t{0});
+    const std::size_t keep = std::min(kCloseNodes, near.size());
+    std::partial_sort(near.begin(), near.begin() + static_cast<std::ptrdiff_t>(keep), near.end(),
+                      [&](std::size_t a, std::size_t b) {
+                        const double x = distance(a), y = distance(b);
+                        return x != y ? x < y : a < b;
+                      });
+    near.resize(keep);
+    const double radius = std::sqrt(distance(near.back()));
+    const double length = kCloseMotion * (radius > 0 ? radius : size_);
+    std::vector<char> inside(picture_.place.size(), 0);
+    for (const std::size_t node : near) inside[node] = 1;
+    std::vector<Triple> shown;
+    for (const std::size_t node : near) {
+      shown.push_back(picture_.place[node]);
+      shown.push_back(moved(node, length));
+    }
+    const Projection to(view_, shown, kCloseWidth, kHeight, 52);
+    const auto both = [&](std::size_t a, std::size_t b) { return inside[a] != 0 && inside[b] != 0; };
+    std::string svg = open(kCloseWidth, "Close up: " + marks_.front().text);
+    svg += lines(to, 0, "v-link v-near", both);
+    svg += lines(to, length, "v-moved", [&](std::size_t a, std::size_t b) { return both(a, b) && (moves(a) || moves(b)); });
+    std::string still, moving, path;
+    for (const std::size_t node : near) {
+      const Point p = to.at(picture_.place[node]);
+      (moves(node) ? moving : still) += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
+      if (moves(node)) path += arrow(p, to.at(moved(node, length)));
+    }
+    if (!still.empty()) svg += fmt::format("<path class=\"v-dot v-near\" d=\"{}\"/>\n", still);
+    if (!moving.empty()) svg += fmt::format("<path class=\"v-part v-near\" d=\"{}\"/>\n", moving);
+    if (!path.empty()) svg += fmt::format("<path class=\"v-arrow\" d=\"{}\"/>\n", path);
+    svg += numbers(to, near);
+    const Point p = to.at(c);
+    svg += fmt::format("<circle class=\"v-ring\" cx=\"{:.1f}\" cy=\"{:.1f}\" r=\"10\"/>\n", p.x, p.y);
+    svg += scale_bar(to, kCloseWidth);
+    return svg + "</svg>\n";
+  }
+
+  /// Node numbers where they do not fall on one another; nodes at one place share a line.
+  std::string numbers(const Projection& to, const std::vector<std::size_t>& near) const {
+    std::string svg;
+    std::vector<Point> taken;
+    for (std::size_t k = 0; k < near.size(); ++k) {
+      const Point p = to.at(picture_.place[near[k]]);
+      std::string text = std::to_string(picture_.node[near[k]]);
+      for (std::size_t j = k + 1; j < near.size(); ++j) {
+        const Point q = to.at(picture_.place[near[j]]);
+        if (std::hypot(p.x - q.x, p.y - q.y) < 0.5 && text.size() < 24) text += ", " + std::to_string(picture_.node[near[j]]);
+      }
+      const bool crowded = std::any_of(taken.begin(), taken.end(), [&](const Point& t) {
+        return std::fabs(t.x - p.x) < 7.0 * static_cast<double>(text.size()) && std::fabs(t.y - p.y) < 13;
+      });
+      if (crowded) continue;
+      taken.push_back(p);
+      svg += fmt::format("<text class=\"v-number\" x=\"{:.1f}\" y=\"{:.1f}\">{}</text>\n", p.x + 9, p.y + 14, text);
+    }
+    return svg;
+  }
+
+  const Picture& picture_;
+  const std::vector<std::array<float, 3>>& shape_;
+  const std::vector<Mark>& marks_;
+  ViewAxes view_;
+  double size_ = 1;
+};
+
+}  // namespace
+
+ViewAxes best_view(const Picture& picture, const std::vector<std::array<float, 3>>& shape) {
+  std::array<Triple, 3> seen{};
+  Triple mean{};
+  double motion = 0, spread = 0;
+  for (const Triple& p : picture.place) {
+    for (std::size_t d = 0; d < 3; ++d) mean[d] += p[d] / static_cast<double>(picture.place.size());
+  }
+  for (const auto& u : shape) {
+    for (const float v : u) motion += static_cast<double>(v) * static_cast<double>(v);
+  }
+  for (const Triple& p : picture.place) {
+    for (std::size_t d = 0; d < 3; ++d) spread += (p[d] - mean[d]) * (p[d] - mean[d]);
+  }
+  for (std::size_t i = 0; i < 3; ++i) {
+    for (std::size_t j = 0; j < 3; ++j) {
+      if (motion > 0) {
+        for (const auto& u : shape) seen[i][j] += static_cast<double>(u[i]) * static_cast<double>(u[j]) / motion;
+      }
+      if (!(spread > 0)) continue;
+      for (const Triple& p : picture.place) seen[i][j] += 0.4 * (p[i] - mean[i]) * (p[j] - mean[j]) / spread;
+    }
+  }
+  const auto axes = axes_of(seen);
+  ViewAxes view;
+  Triple toward = axes[0];
+  // Of the two sides the one from above and from the front.
+  if (toward[2] < -1e-9 || (std::fabs(toward[2]) <= 1e-9 && toward[1] > 0)) toward = {-toward[0], -toward[1], -toward[2]};
+  Triple aside = axes[1], along = axes[2];
+  constexpr Triple kFrontAboveRight{0.6, -0.7, 0.9};
+  if (dot(aside, kFrontAboveRight) < 0) aside = {-aside[0], -aside[1], -aside[2]};
+  if (dot(along, kFrontAboveRight) < 0) along = {-along[0], -along[1], -along[2]};
+  for (std::size_t d = 0; d < 3; ++d) toward[d] += 0.40 * aside[d] + 0.24 * along[d];
+  view.toward = unit(toward);
+  const Triple vertical = std::fabs(view.toward[2]) > 0.97 ? Triple{0, 1, 0} : Triple{0, 0, 1};
+  view.right = unit(cross(vertical, view.toward));
+  view.up = cross(view.toward, view.right);
+  return view;
+}
+
+ModelDrawing draw_model(const Picture& picture, const std::vector<std::array<float, 3>>& shape,
+                        const std::vector<Mark>& marks) {
+  return Drawer(picture, shape, marks).run();
+}
+
+std::string draw_field(const Picture& picture, const std::vector<float>& value, double top) {
+  if (picture.place.empty() || value.size() != picture.place.size()) return "";
+  constexpr int kSteps = 6;
+  const ViewAxes view = best_view(picture, {});
+  const Projection to(view, picture.place, kWidth, kHeight, kMargin);
+  // The largest value of a cell is the one that shows.
+  std::vector<std::size_t> order(picture.place.size());
+  std::iota(order.begin(), order.end(), std::size_t{0});
+  std::stable_sort(order.begin(), order.end(), [&](std::size_t a, std::size_t b) { return value[a] > value[b]; });
+  std::unordered_set<std::uint64_t> seen;
+  std::array<std::string, kSteps> paths;
+  const double dot_width = std::clamp(0.5 * std::sqrt(kWidth * kHeight / static_cast<double>(order.size())), 2.8, 11.0);
+  for (const std::size_t node : order) {
+    const Point p = to.at(picture.place[node]);
+    if (!seen.insert(cell_of(p, kCell)).second) continue;
+    const double part = top > 0 ? static_cast<double>(value[node]) / top : 0;
+    const int step = std::clamp(static_cast<int>(part * kSteps), 0, kSteps - 1);
+    paths[static_cast<std::size_t>(step)] += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
+  }
+  std::string svg = fmt::format("<svg class=\"view\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Digits lost, by "
+                                "node\">\n",
+                                kWidth, kHeight);
+  for (int step = 0; step < kSteps; ++step) {
+    const std::string& path = paths[static_cast<std::size_t>(step)];
+    if (!path.empty()) svg += fmt::format("<path class=\"v-field v-{}\" style=\"stroke-width:{:.1f}\" d=\"{}\"/>\n", step, dot_width, path);
+  }
+  return svg + "</svg>\n";
+}
+
+}  // namespace stanchion

@@ -1,0 +1,41 @@
+// The node cloud as SVG, seen along the direction that shows a motion best.
+#pragma once
+
+#include <array>
+#include <string>
+#include <vector>
+
+#include "stanchion/located.hpp"
+
+namespace stanchion {
+
+/// A view: unit vectors to the right, up, and towards the eye.
+struct ViewAxes {
+  std::array<double, 3> right{1, 0, 0}, up{0, 0, 1}, toward{0, -1, 0};
+};
+
+/// The direction along which little of the motion (and of the model) is lost, a little aside so that depth shows.
+ViewAxes best_view(const Picture& picture, const std::vector<std::array<float, 3>>& shape);
+
+/// What a drawing points at.
+struct Mark {
+  std::size_t node = 0;  ///< index in the picture
+  std::string text;
+};
+
+struct ModelDrawing {
+  std::string overview, close_up;  ///< two SVG elements; empty when there is nothing to draw
+  double exaggeration = 0;         ///< drawn length of the largest motion over the model's size
+  ViewAxes view;
+  std::size_t drawn = 0, left_out = 0;  ///< nodes of the cloud that were drawn and thinned out
+};
+
+/// Overview of the whole model with the motion in a second colour, and a close-up on the first mark. Colours
+/// come from the page's style (classes v-...). A million nodes are thinned to one a few pixels.
+ModelDrawing draw_model(const Picture& picture, const std::vector<std::array<float, 3>>& shape,
+                        const std::vector<Mark>& marks);
+
+/// The cloud coloured by a value of each node (classes v-0 to v-5 for six steps from 0 to `top`); empty without nodes.
+std::string draw_field(const Picture& picture, const std::vector<float>& value, double top);
+
+}  // namespace stanchion
