@@ -17,6 +17,9 @@ std::vector<std::unique_ptr<stanchion::cli::Command>> all_commands() {
   std::vector<std::unique_ptr<stanchion::cli::Command>> commands;
   commands.push_back(stanchion::cli::make_check_command());
   commands.push_back(stanchion::cli::make_count_command());
+  commands.push_back(stanchion::cli::make_sweep_command());
+  commands.push_back(stanchion::cli::make_bracket_command());
+  commands.push_back(stanchion::cli::make_audit_command());
   commands.push_back(stanchion::cli::make_locate_command());
   commands.push_back(stanchion::cli::make_forecast_command());
   commands.push_back(stanchion::cli::make_specimen_command());

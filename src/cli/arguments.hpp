@@ -26,6 +26,9 @@ class Arguments {
   /// In the order of declaration; a `required` one that is missing is bad usage.
   void positional(const std::string& name, std::optional<std::string>& target, const std::string& value,
                   const std::string& help, bool required);
+  /// All that follow; after every other positional.
+  void positionals(const std::string& name, std::vector<std::string>& target, const std::string& value,
+                   const std::string& help);
   void flag(const std::string& name, bool& target, const std::string& help);
   void text(const std::string& name, std::optional<std::string>& target, const std::string& value,
             const std::string& help);

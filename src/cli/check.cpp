@@ -17,6 +17,7 @@ void CheckCommand::declare(Arguments& arguments) {
   arguments.closing(
       "Examples:\n"
       "  stanchion check K.mtx\n"
+      "  stanchion check step1.mtx step2.mtx step3.mtx (a load path)\n"
       "  stanchion check K.mtx --add Gdead.mtx:1.35 --expect positive-definite\n"
       "  stanchion check free.mtx --expect zero:6 --json answer.json");
 }

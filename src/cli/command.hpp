@@ -26,6 +26,9 @@ class Command {
 
 std::unique_ptr<Command> make_check_command();
 std::unique_ptr<Command> make_count_command();
+std::unique_ptr<Command> make_sweep_command();
+std::unique_ptr<Command> make_bracket_command();
+std::unique_ptr<Command> make_audit_command();
 std::unique_ptr<Command> make_locate_command();
 std::unique_ptr<Command> make_forecast_command();
 std::unique_ptr<Command> make_specimen_command();

@@ -28,6 +28,11 @@ void Arguments::positional(const std::string& name, std::optional<std::string>& 
   parser_->app->add_option(name, target, help)->type_name(value)->required(required);
 }
 
+void Arguments::positionals(const std::string& name, std::vector<std::string>& target, const std::string& value,
+                            const std::string& help) {
+  parser_->app->add_option(name, target, help)->type_name(value)->expected(-1);
+}
+
 void Arguments::flag(const std::string& name, bool& target, const std::string& help) {
   parser_->app->add_flag(name, target, help)->group(parser_->group)->disable_flag_override();
 }

@@ -7,17 +7,24 @@
 
 namespace stanchion::cli {
 
-Result<std::optional<AnswerFile>> open_target(const std::string& option,
-                                              const std::optional<std::string>& target,
-                                              const std::vector<std::string>& read) {
-  std::optional<AnswerFile> file;
-  if (!target || *target == "-") return file;
+Status check_not_read(const std::string& option, const std::optional<std::string>& target,
+                      const std::vector<std::string>& read) {
+  if (!target) return {};
   for (const std::string& path : read) {
     std::error_code absent;
     if (!std::filesystem::equivalent(path, *target, absent)) continue;
     return Status::bad_usage("contradiction", path + " is read and would be overwritten", option,
                              "name another file for the answer");
   }
+  return {};
+}
+
+Result<std::optional<AnswerFile>> open_target(const std::string& option,
+                                              const std::optional<std::string>& target,
+                                              const std::vector<std::string>& read) {
+  std::optional<AnswerFile> file;
+  if (!target || *target == "-") return file;
+  if (Status status = check_not_read(option, target, read); !status.ok()) return status;
   auto opened = AnswerFile::open(*target);
   if (!opened.ok()) return opened.status();
   file = std::move(*opened);

@@ -17,6 +17,10 @@ Result<std::optional<AnswerFile>> open_target(const std::string& option,
                                               const std::optional<std::string>& target,
                                               const std::vector<std::string>& read);
 
+/// Bad usage "contradiction" when `target`, named by `option`, is one of the files in `read`.
+Status check_not_read(const std::string& option, const std::optional<std::string>& target,
+                      const std::vector<std::string>& read);
+
 /// Every file that `input` names.
 std::vector<std::string> files_read(const InputRequest& input);
 

@@ -2,12 +2,16 @@
 
 #include <fmt/format.h>
 
+#include <algorithm>
+
 #include "cli/answer_file.hpp"
 #include "cli/certificate_file.hpp"
 #include "cli/interrupt.hpp"
 #include "cli/log_file.hpp"
+#include "cli/mode_files.hpp"
 #include "cli/output_targets.hpp"
 #include "cli/progress_line.hpp"
+#include "cli/sweep_results.hpp"
 #include "cli/terminal.hpp"
 #include "cli/witness_file.hpp"
 #include "model/exit_code.hpp"
@@ -17,17 +21,23 @@
 #include "report/html.hpp"
 #include "report/json.hpp"
 #include "report/junit.hpp"
+#include "report/staircase_svg.hpp"
 #include "report/text.hpp"
 #include "report/vtu.hpp"
 
 namespace stanchion::cli {
 namespace {
 
+const char* expectations_of(Question question) {
+  if (question == Question::kBracket) return "none-below; exit 1 if not";
+  if (question == Question::kAudit) return "complete; exit 1 if not";
+  return "positive-definite, zero:N or negative:N; exit 1 if not";
+}
+
 void declare_output_options(Arguments& arguments, OutputOptions& options, Question question) {
   arguments.group("Output");
   if (question != Question::kLocate) {
-    arguments.text("--expect", options.expectation, "WHAT",
-                   "positive-definite, zero:N or negative:N; exit 1 if not");
+    arguments.text("--expect", options.expectation, "WHAT", expectations_of(question));
   }
   arguments.text("--json", options.json, "FILE",
                  "the whole answer as JSON; - for standard output, nothing else");
@@ -37,13 +47,21 @@ void declare_output_options(Arguments& arguments, OutputOptions& options, Questi
   if (question == Question::kCheck || question == Question::kLocate) {
     arguments.text("--vtu", options.vtu, "FILE", "nodes, links, motions and digits as a VTK grid (needs --nodes)");
   }
-  if (question != Question::kForecast && question != Question::kLocate) {
+  if (question == Question::kCheck || question == Question::kCount) {
     arguments.text("--certificate", options.certificate, "FILE",
                    "what was claimed and how, for `stanchion recheck FILE`");
   }
   if (question == Question::kCheck) {
     arguments.text("--witness", options.witness, "FILE",
                    "a vector x with x^T K x < 0 as CSV, if one is found");
+  }
+  if (question == Question::kSweep) {
+    arguments.text("--svg", options.svg, "FILE", "the staircase as a picture");
+    arguments.text("--results", options.results, "FILE", "every count as it comes; an interrupted sweep goes on from it");
+  }
+  if (question == Question::kBracket) {
+    arguments.text("--modes", options.modes, "FILE", "the mode shapes as CSV, or as a NumPy array (.npy)");
+    arguments.text("--vtu", options.vtu, "FILE", "the mode shapes on the nodes, as VTK XML; needs --nodes and --dofs");
   }
   arguments.flag("--quiet", options.quiet, "no text on standard output, no progress line");
   arguments.text("--log", options.log, "FILE", "one line a stage; - for standard error");
@@ -63,7 +81,7 @@ Result<Judgement> build_judgement(const OutputOptions& output, bool symmetric_pa
 
 /// Every file that is to be written, opened ahead of the work.
 struct Targets {
-  std::optional<AnswerFile> json, html, junit, csv, vtu, certificate, witness;
+  std::optional<AnswerFile> json, html, junit, csv, vtu, certificate, witness, svg, modes;
   std::vector<CertifiedFile> support_files;  ///< for the certificate
 };
 
@@ -73,12 +91,17 @@ Status refuse_dash(const char* option, const std::optional<std::string>& path) {
                            "name a file");
 }
 
-Status open_targets(const OutputOptions& output, const InputRequest& input, Targets& targets) {
-  const std::vector<std::string> read = files_read(input);
+Status open_targets(const OutputOptions& output, const Request& request, Targets& targets) {
+  const InputRequest& input = request.input;
+  std::vector<std::string> read = files_read(input);
+  read.insert(read.end(), request.steps.begin(), request.steps.end());
+  if (!request.audit.values.empty()) read.push_back(request.audit.values);
   for (const Status& status :
        {refuse_dash("--certificate", output.certificate), refuse_dash("--witness", output.witness),
         refuse_dash("--html", output.html), refuse_dash("--junit", output.junit), refuse_dash("--csv", output.csv),
         refuse_dash("--vtu", output.vtu),
+        refuse_dash("--svg", output.svg), refuse_dash("--results", output.results),
+        refuse_dash("--modes", output.modes),
         check_targets_differ({{"--json", output.json},
                               {"--html", output.html},
                               {"--junit", output.junit},
@@ -86,6 +109,9 @@ Status open_targets(const OutputOptions& output, const InputRequest& input, Targ
                               {"--vtu", output.vtu},
                               {"--certificate", output.certificate},
                               {"--witness", output.witness},
+                              {"--svg", output.svg},
+                              {"--results", output.results},
+                              {"--modes", output.modes},
                               {"--log", output.log}})}) {
     if (!status.ok()) return status;
   }
@@ -103,6 +129,9 @@ Status open_targets(const OutputOptions& output, const InputRequest& input, Targ
   if (Status status = open("--certificate", output.certificate, targets.certificate); !status.ok())
     return status;
   if (Status status = open("--witness", output.witness, targets.witness); !status.ok()) return status;
+  if (Status status = open("--svg", output.svg, targets.svg); !status.ok()) return status;
+  if (Status status = open("--modes", output.modes, targets.modes); !status.ok()) return status;
+  if (Status status = check_not_read("--results", output.results, read); !status.ok()) return status;
   if (!output.certificate) return {};
   auto support = certify_support_files(input);
   if (support.ok()) targets.support_files = std::move(*support);
@@ -133,7 +162,7 @@ Status deliver_witness(const OutputOptions& output, const std::optional<std::str
 
 /// The grid, or a warning that there is nothing to put on it; the file then does not appear.
 Status deliver_grid(const OutputOptions& output, Targets& targets, Outcome& outcome) {
-  if (!targets.vtu) return {};
+  if (!targets.vtu || outcome.bracket) return {};
   if (outcome.located && !outcome.located->picture.node.empty()) return targets.vtu->commit(to_vtu(*outcome.located));
   const Warning none{"no-grid", "there is nothing to put on a grid: no coordinates are known, or nothing was certified",
                      *output.vtu + " (not written)"};
@@ -154,6 +183,47 @@ Status deliver_reports(Targets& targets, const Outcome& outcome, ExitCode code) 
   return targets.csv ? targets.csv->commit(to_csv(outcome)) : Status{};
 }
 
+/// Writes the shapes, or says that there are none; the files then do not appear.
+Status deliver_modes(const Request& request, const OutputOptions& output, Targets& targets, Outcome& outcome) {
+  if (!outcome.bracket || (!targets.modes && !targets.vtu)) return {};
+  const BracketOutcome& bracket = *outcome.bracket;
+  const bool any = std::any_of(bracket.critical.begin(), bracket.critical.end(),
+                               [](const CriticalValue& value) { return !value.modes.empty(); });
+  if (!any) {
+    outcome.warnings.push_back({"no-modes",
+                                bracket.critical.empty() ? "there is no value, hence no mode shape"
+                                                         : "bisection by counts gives no mode shapes",
+                                output.modes.value_or(output.vtu.value_or("")) + " (not written)"});
+    return {};
+  }
+  if (targets.modes) {
+    const auto table = mode_table(bracket, request.input, *output.modes);
+    if (!table.ok()) return table.status();
+    if (Status status = targets.modes->commit(*table); !status.ok()) return status;
+  }
+  if (!targets.vtu) return {};
+  const auto grid = mode_grid(bracket, request.input);
+  return grid.ok() ? targets.vtu->commit(*grid) : grid.status();
+}
+
+/// Outputs that belong to one matrix, or to a range.
+Status check_outputs(const Request& request, const OutputOptions& output, Question question) {
+  const char* single = output.witness ? "--witness" : output.certificate ? "--certificate" : nullptr;
+  if (!request.steps.empty() && single != nullptr) {
+    return Status::bad_usage("contradiction", "this belongs to one matrix, not to a load path", single,
+                             "ask it of the step that you want to know about");
+  }
+  if (request.bracket.safety && request.bracket.first) {
+    return Status::bad_usage("contradiction", "of the first ones it is known that there are some", "--expect",
+                             "give a range: --below B, or --from and --to");
+  }
+  if (output.vtu && question == Question::kBracket && (!request.input.nodes || !request.input.dofs)) {
+    return Status::bad_usage("contradiction", "a grid of the nodes needs to know them", "--vtu",
+                             "name the tables with --nodes and --dofs");
+  }
+  return {};
+}
+
 Status deliver(const Request& request, const OutputOptions& output, Targets& targets, Outcome& outcome, ExitCode code) {
   if (Status status = deliver_witness(output, request.input.dofs, targets, outcome); !status.ok())
     return status;
@@ -162,6 +232,11 @@ Status deliver(const Request& request, const OutputOptions& output, Targets& tar
     if (Status status = targets.certificate->commit(certificate_to_json(document)); !status.ok())
       return status;
   }
+  if (targets.svg) {
+    const std::string picture = staircase_svg(outcome, request.sweep.geometric);
+    if (Status status = targets.svg->commit(picture); !status.ok()) return status;
+  }
+  if (Status status = deliver_modes(request, output, targets, outcome); !status.ok()) return status;
   if (Status status = deliver_grid(output, targets, outcome); !status.ok()) return status;
   if (Status status = deliver_reports(targets, outcome, code); !status.ok()) return status;
   if (targets.json) {
@@ -190,6 +265,8 @@ Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log,
   RunContext context;
   context.cancel = &token;
   context.progress = [&line](const char* stage, double fraction) { line.update(stage, fraction); };
+  std::optional<SweepResults> results;
+  if (output_.results) context.journal = &results.emplace(*output_.results, request);
   context.log = [&log](const std::string& text) { log.line(text); };
   return engine_(request, context);
 }
@@ -206,8 +283,12 @@ Result<int> QuestionCommand::run(const Call& call) {
   }
   const auto judgement = build_judgement(output_, request_.symmetric_part, question_);
   if (!judgement.ok()) return judgement.status();
+  request->bracket.safety =
+      judgement->expectation && judgement->expectation->kind == Expectation::Kind::kNoneBelow;
+  request->bracket.want_modes = question_ == Question::kBracket && (output_.modes || output_.vtu);
+  if (Status status = check_outputs(*request, output_, question_); !status.ok()) return status;
   Targets targets;
-  if (Status status = open_targets(output_, request->input, targets); !status.ok()) return status;
+  if (Status status = open_targets(output_, *request, targets); !status.ok()) return status;
   const auto log = LogFile::open(output_.log);
   if (!log.ok()) return log.status();
 

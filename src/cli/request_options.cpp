@@ -2,6 +2,8 @@
 
 #include <fmt/format.h>
 
+#include <filesystem>
+#include <fstream>
 #include <limits>
 
 #include "model/byte_size.hpp"
@@ -12,11 +14,16 @@ namespace {
 
 void declare_matrices(Arguments& arguments, RequestOptions& options, Question question) {
   arguments.positional("K", options.stiffness, "FILE",
-                       "the stiffness matrix; its format is found from its content", true);
+                       "the stiffness matrix; its format is found from its content", question != Question::kCheck);
+  if (question == Question::kCheck) {
+    arguments.positionals("steps", options.steps, "FILE", "more matrices of one pattern: a load path, in order");
+  }
   arguments.group("Matrices");
   if (question == Question::kLocate) {
     arguments.text("--mass", options.mass, "FILE", "mass M, matrix or diagonal: its total and centre are stated");
-  } else if (question != Question::kCheck) {
+  } else if (question == Question::kCheck) {
+    arguments.text("--list", options.list, "FILE", "the matrices of a load path, one path a line, in order");
+  } else {
     arguments.text("--geometric", options.geometric, "FILE", "geometric stiffness G: the pencil K + f G");
     arguments.text("--mass", options.mass, "FILE", "mass M, matrix or diagonal: the pencil K - s M");
     arguments.text("--load-sign", options.load_sign, "plus|minus",
@@ -180,6 +187,38 @@ Status fill_input(const RequestOptions& options, InputRequest& input) {
   return {};
 }
 
+/// The paths of a list, one a line; relative ones beside the list. Blank lines and those that begin with # are passed over.
+Result<std::vector<std::string>> read_path_list(const std::string& list) {
+  std::ifstream file(list);
+  if (!file) {
+    return Status::bad_input("file-not-found", "the list cannot be read", list, "name a file with one path a line");
+  }
+  std::vector<std::string> paths;
+  for (std::string line; std::getline(file, line);) {
+    const auto end = line.find_last_not_of(" \t\r");
+    const auto begin = line.find_first_not_of(" \t\r");
+    if (begin == std::string::npos || line[begin] == '#') continue;
+    const std::filesystem::path path = line.substr(begin, end - begin + 1);
+    paths.push_back(path.is_absolute() ? path.string() : (std::filesystem::path(list).parent_path() / path).string());
+  }
+  if (paths.empty()) return Status::bad_input("empty-file", "the list names no matrix", list, "write one path a line");
+  return paths;
+}
+
+Status fill_load_path(const RequestOptions& options, Request& request) {
+  request.steps = options.steps;
+  if (!options.list) return {};
+  if (options.stiffness) {
+    return Status::bad_usage("contradiction", "matrices come from the command line and from a list", "--list",
+                             "give them one way");
+  }
+  auto paths = read_path_list(*options.list);
+  if (!paths.ok()) return paths.status();
+  request.input.stiffness = paths->front();
+  request.steps.assign(paths->begin() + 1, paths->end());
+  return {};
+}
+
 }  // namespace
 
 void declare_request_options(Arguments& arguments, RequestOptions& options, Question question) {
@@ -189,6 +228,7 @@ void declare_request_options(Arguments& arguments, RequestOptions& options, Ques
     arguments.texts("--at", options.shifts, "s1,s2,...",
                     "where to count (may be repeated; negative ones too)");
   }
+  declare_spectrum_options(arguments, options.spectrum, question);
   declare_model_files(arguments, options);
   if (question == Question::kCheck || question == Question::kLocate) declare_location(arguments, options, question);
   declare_numbers(arguments, options, question);
@@ -197,6 +237,7 @@ void declare_request_options(Arguments& arguments, RequestOptions& options, Ques
 Result<Request> build_request(const RequestOptions& options, Question question) {
   Request request;
   if (Status status = fill_input(options, request.input); !status.ok()) return status;
+  if (Status status = fill_load_path(options, request); !status.ok()) return status;
   if (Status status = fill_numbers(options, request); !status.ok()) return status;
   for (const std::string& list : options.shifts) {
     if (Status status = append_shifts(list, request.shifts); !status.ok()) return status;
@@ -204,6 +245,7 @@ Result<Request> build_request(const RequestOptions& options, Question question) 
   if (request.input.geometric) request.pencil = Pencil::kGeometric;
   if (request.input.mass) request.pencil = Pencil::kMass;
   if (request.input.geometric && request.input.mass) request.pencil = Pencil::kStiffness;
+  if (Status status = fill_spectrum(options.spectrum, question, request); !status.ok()) return status;
   if (Status status = validate(request, question); !status.ok()) return status;
   return request;
 }

@@ -7,6 +7,7 @@
 #include <vector>
 
 #include "cli/arguments.hpp"
+#include "cli/spectrum_options.hpp"
 #include "model/question.hpp"
 #include "stanchion/request.hpp"
 #include "stanchion/status.hpp"
@@ -16,10 +17,12 @@ namespace stanchion::cli {
 struct RequestOptions {
   std::optional<std::string> stiffness, geometric, mass, dofs, nodes, axes, fix, multipliers;
   std::optional<std::string> load_sign, memory_cap, precision;
-  std::vector<std::string> added, shifts;
+  std::vector<std::string> added, shifts, steps;
+  std::optional<std::string> list;
   std::optional<std::int64_t> base, rows, digits, threads, seed, most;
   std::optional<double> resolution, risk, weak_below, attention_digits, alarm_digits;
   bool symmetric_part = false, strike_held = false, locate = false;
+  SpectrumOptions spectrum;
 };
 
 /// Declares the options that `question` takes; `options` must outlive the parse.

@@ -2,7 +2,9 @@
 #include <cstdio>
 
 #include "base/clock.hpp"
+#include "engine/check_model.hpp"
 #include "engine/constraints.hpp"
+#include "engine/load_path.hpp"
 #include "engine/location.hpp"
 #include "engine/prepared_pencil.hpp"
 #include "extended/factorize.hpp"
@@ -28,8 +30,10 @@ void offer_last_resort(const PreparedPencil& pencil, const Request& request, Out
                               outcome.inputs.front().path});
 }
 
+}  // namespace
+
 Result<Outcome> check_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
-                            Outcome outcome) {
+                            Outcome outcome, SharedAnalysis* shared) {
   const bool locate = request.want_location;
   LocationFacts facts;
   if (locate) facts = collect_location_facts(model, request, outcome);
@@ -40,7 +44,7 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
     if (!certified_rank.ok()) return certified_rank.status();
     rank = std::move(*certified_rank);
   }
-  auto pencil = PreparedPencil::make(model, false, request, context, pool, outcome);
+  auto pencil = PreparedPencil::make(model, false, request, context, pool, outcome, shared);
   if (!pencil.ok()) return pencil.status();
   const bool definite_first = multipliers.empty();
   auto certified = locate ? certify_and_locate(*pencil, facts, request, rank.least, pool, outcome)
@@ -73,11 +77,10 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
     if (!rounded.ok()) return rounded.status();
     check.verdict_for_digits = verdict_of(rounded->inertia, rounded->certificate.level);
   }
+  if (shared != nullptr) pencil->leave_analysis(*shared);
   outcome.check = std::move(check);
   return outcome;
 }
-
-}  // namespace
 
 namespace {
 
@@ -88,7 +91,9 @@ Result<Outcome> check_or_locate(const Request& request, Question question, const
   auto model = request.want_location ? read_model_to_locate(request, context, pool, outcome)
                                      : read_model(request, context, pool, outcome);
   if (!model.ok()) return model.status();
-  auto result = check_model(std::move(*model), request, context, pool, std::move(outcome));
+  auto result = request.steps.empty()
+                    ? check_model(std::move(*model), request, context, pool, std::move(outcome))
+                    : check_load_path(std::move(*model), request, context, pool, std::move(outcome));
   if (result.ok()) finish_outcome(*result, watch.seconds());
   return result;
 }

@@ -278,10 +278,13 @@ double PencilCounter::factor_of(double shift) const {
   return -shift;
 }
 
-Result<ShiftCount> PencilCounter::count(double shift) {
+Result<CertifiedInertia> PencilCounter::inertia_at(double shift, bool definite_first) {
   const double factor = factor_of(shift);
-  auto found =
-      pencil_->certify(factor, request_.pencil == Pencil::kGeometric, data_error(*pencil_, factor), pool_, outcome_);
+  return pencil_->certify(factor, definite_first, data_error(*pencil_, factor), pool_, outcome_);
+}
+
+Result<ShiftCount> PencilCounter::count(double shift) {
+  auto found = inertia_at(shift, request_.pencil == Pencil::kGeometric);
   if (!found.ok()) return found.status();
   return count_from(shift, *found, outcome_.warnings);
 }

@@ -39,6 +39,10 @@ class PencilCounter {
   /// The count at one shift, charged to the document's risk.
   Result<ShiftCount> count(double shift);
 
+  /// The inertia at one shift, K expected to be definite there or not, and the count that it makes.
+  Result<CertifiedInertia> inertia_at(double shift, bool definite_first);
+  ShiftCount count_of(double shift, const CertifiedInertia& found) { return count_from(shift, found, outcome_.warnings); }
+
   /// The same with a risk of its own, as event `number` of the document (from 1, each used once); everything is booked
   /// in `scratch`. For shifts side by side, each with a pool of its own; `share` of the memory each.
   Result<ShiftCount> count_apart(double shift, Index number, int share, ThreadPool& pool, Outcome& scratch) const;
@@ -60,6 +64,8 @@ class PencilCounter {
   const Certificate& base() const { return base_; }
   /// K's own inertia, when judge() looked at it.
   const std::optional<CertifiedInertia>& stiffness() const { return stiffness_; }
+  /// A lower bound of S K S, when judged definite by a proof; else 0.
+  double stiffness_bound() const { return stiffness_bound_; }
   bool mass_semidefinite() const { return mass_semidefinite_; }
 
   void warn(const char* code, std::string message);

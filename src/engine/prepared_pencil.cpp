@@ -64,6 +64,30 @@ constexpr double kLongJobFlops = 5e10;
 
 std::string mebibytes(Offset bytes) { return std::to_string((bytes + (1 << 20) - 1) >> 20) + " MiB"; }
 
+bool same_pattern(const SymmetricMatrix& pattern, const SharedAnalysis& shared) {
+  return pattern.column_start.size() == shared.column_start.size() && pattern.row.size() == shared.row.size() &&
+         std::equal(pattern.column_start.begin(), pattern.column_start.end(), shared.column_start.begin()) &&
+         std::equal(pattern.row.begin(), pattern.row.end(), shared.row.begin());
+}
+
+/// The one of the matrix before, where the pattern is the same; else a new one, kept in mind for the next.
+Result<Analysis> analysis_of(const SymmetricMatrix& pattern, const std::vector<Index>& nodes, bool second_path, int workers,
+                             SharedAnalysis* shared) {
+  if (shared != nullptr && shared->analysis && same_pattern(pattern, *shared)) {
+    ++shared->reused;
+    Analysis analysis = std::move(*shared->analysis);
+    shared->analysis.reset();
+    analysis.order_seconds = analysis.analyse_seconds = 0;
+    return analysis;
+  }
+  if (shared != nullptr) {
+    shared->column_start = pattern.column_start.clone();
+    shared->row = pattern.row.clone();
+    shared->analysis.reset();
+  }
+  return analyse({&pattern, nodes, true, second_path}, workers);
+}
+
 Status check_cap(const Request& request, Offset needed) {
   if (!request.memory_cap_bytes || needed <= *request.memory_cap_bytes) return {};
   return Status::resource_limit("memory-cap",
@@ -94,7 +118,8 @@ void finish_outcome(Outcome& outcome, double total_seconds) {
 }
 
 Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identity, const Request& request,
-                                            const RunContext& context, ThreadPool& pool, Outcome& outcome) {
+                                            const RunContext& context, ThreadPool& pool, Outcome& outcome,
+                                            SharedAnalysis* shared) {
   PreparedPencil pencil;
   if (context.progress) context.progress("order", 0);
   std::optional<SymmetricMatrix> unit;
@@ -106,6 +131,8 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   pencil.has_second_ = model.second || unit;
   for (const AddedMatrix& added : request.input.added) pencil.added_factors_.push_back(added.factor);
 
+  pencil.original_ = model.original;
+  pencil.file_rows_ = outcome.rows_analysed + outcome.rows_struck;
   MatrixFamily family = unite(members);
   model.stiffness = SymmetricMatrix{};  // the union holds everything now
   model.second.reset();
@@ -115,7 +142,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   SymmetricMatrix pattern{family.rows, std::move(family.column_start), std::move(family.row),
                           std::move(family.values[0])};
   const std::vector<Index> nodes = nodes_of(model.dofs, family.rows);
-  auto analysis = analyse({&pattern, nodes, true, request.second_path}, pool.size());
+  auto analysis = analysis_of(pattern, nodes, request.second_path, pool.size(), shared);
   if (!analysis.ok()) return analysis.status();
   if (context.cancel != nullptr && context.cancel->cancelled()) return Status::interrupted();
   pencil.analysis_ = std::move(*analysis);
@@ -273,6 +300,47 @@ int PreparedPencil::side_by_side(int most) const {
   const Offset each = extended_ ? counting_bytes() : analysis_.forecast.peak_bytes_solve;
   const Offset room = bytes_for_factor();
   return static_cast<int>(std::clamp<Offset>(each > 0 ? room / each : most, 1, std::max(most, 1)));
+}
+
+Result<std::optional<DefiniteBase>> PreparedPencil::definite_base(double factor, double smallest_eigenvalue,
+                                                                  ThreadPool& pool, Outcome& outcome) {
+  const double spent_before = risk_->spent();
+  DefiniteBaseOptions options{factor_options_, smallest_eigenvalue, risk_.get(), seed_};
+  auto base = DefiniteBase::make(analysis_, combination(factor), options, pool);
+  if (!base.ok()) return base.status();
+  ++outcome.work.factorizations;
+  outcome.memory.forecast = std::max(outcome.memory.forecast, resident_before_ + analysis_.forecast.peak_bytes_solve);
+  outcome.risk = risk_->spent();
+  if (risk_->spent() > spent_before) {
+    outcome.events.push_back({has_second_ ? std::optional(factor) : std::nullopt, risk_->spent() - spent_before,
+                              base->has_value()});
+  }
+  if (*base) {
+    outcome.timings.factor += (*base)->factor_seconds();
+    outcome.timings.certify += (*base)->certify_seconds();
+  }
+  return base;
+}
+
+Mode PreparedPencil::mode_of(const std::vector<double>& vector, double value, double residual) const {
+  Mode mode{std::vector<double>(static_cast<std::size_t>(file_rows_), 0.0), value, residual};
+  double largest = 0;
+  for (Index p = 0; p < analysis_.tree.rows; ++p) {
+    const double entry = vector[static_cast<std::size_t>(p)] * scale_[p];
+    const Index equation = analysis_.tree.equation_at[p];
+    const Index in_file = original_.empty() ? equation : original_[static_cast<std::size_t>(equation)];
+    mode.shape[static_cast<std::size_t>(in_file)] = entry;
+    if (std::fabs(entry) > std::fabs(largest)) largest = entry;
+  }
+  if (largest == 0) return mode;
+  for (double& entry : mode.shape) entry /= largest;
+  return mode;
+}
+
+ShiftedMatrix PreparedPencil::second(double coefficient) const {
+  ShiftedMatrix matrix = second_alone();
+  if (has_second_) matrix.coefficients.back() = coefficient;
+  return matrix;
 }
 
 double PreparedPencil::size_ratio() const {

@@ -11,18 +11,31 @@
 #include "model/library_count.hpp"
 #include "model/question.hpp"
 #include "sparse/matrix_family.hpp"
+#include "spectrum/definite_base.hpp"
 #include "symbolic/analysis.hpp"
 
 namespace stanchion {
+
+/// An analysis that waits for the next matrix of its pattern.
+struct SharedAnalysis {
+  Buffer<Offset> column_start;  ///< of the pattern it was made for
+  Buffer<Index> row;
+  std::optional<Analysis> analysis;
+  Index reused = 0;
+};
 
 /// Members of the family: the stiffness, the added matrices, and last the second matrix (or the identity).
 class PreparedPencil {
  public:
   /// Takes the matrices out of `model`. `with_identity`: the second member is I (shifts of K alone).
   /// Fills timings, work and the memory forecast of `outcome`, and refuses what the cap cannot hold. Goes on with the
-  /// risk that `outcome` has spent: one document, one budget.
+  /// risk that `outcome` has spent: one document, one budget. `shared`: see leave_analysis().
   static Result<PreparedPencil> make(ModelInput& model, bool with_identity, const Request& request,
-                                     const RunContext& context, ThreadPool& pool, Outcome& outcome);
+                                     const RunContext& context, ThreadPool& pool, Outcome& outcome,
+                                     SharedAnalysis* shared = nullptr);
+
+  /// Ends the pencil's use and leaves its analysis for the next matrix; make() takes it where the pattern is the same.
+  void leave_analysis(SharedAnalysis& shared) { shared.analysis = std::move(analysis_); }
 
   /// Certified inertia of K (with what is added) + factor * second. `definite_first`: see OffsetOptions.
   /// Books time and work into `outcome`.
@@ -42,6 +55,21 @@ class PreparedPencil {
 
   /// How many factorizations may run side by side, each with the forecast memory, at most `most`.
   int side_by_side(int most) const;
+
+  /// K with what is added plus `factor` times the second matrix, definite, with its factor kept; nothing when it is not
+  /// definite. `smallest_eigenvalue`: a proved bound of it, or 0. Charged to the document where a test is needed. The base
+  /// refers to this pencil and to `pool`.
+  Result<std::optional<DefiniteBase>> definite_base(double factor, double smallest_eigenvalue, ThreadPool& pool,
+                                                    Outcome& outcome);
+
+  /// `coefficient` times the second matrix, scaled, in elimination order.
+  ShiftedMatrix second(double coefficient) const;
+
+  /// `vector` (of the scaled matrix, by elimination position) as a mode shape by equation of the files.
+  Mode mode_of(const std::vector<double>& vector, double value, double residual) const;
+
+  /// Bytes that may still be used, by the cap or by what the machine has.
+  Offset free_bytes() const { return bytes_for_factor(); }
 
   /// ||S K S|| over ||S (second) S||, in the infinity norm: the factor at which the two are of one size.
   double size_ratio() const;
@@ -99,6 +127,8 @@ class PreparedPencil {
   MatrixFamily family_;
   Buffer<double> scale_;
   std::vector<double> added_factors_;
+  std::vector<Index> original_;  ///< see ModelInput
+  Index file_rows_ = 0;
   bool has_second_ = false, extended_ = false;
   double second_bound_ = 0;
   Offset resident_before_ = 0;  ///< of the process, before the first factorization

@@ -186,6 +186,7 @@ class RelativeTest {
       h_most_ = gamma_ * m_norm_ * y_most;
       if (!(h_most_ < g)) return false;
       beta_ = y_most / (g - h_most_);
+      first->inverse_norm = beta_ * (1 + 1e-12);
     }
     combine(v, input);
     const Norms v_norm = column_norms(v);

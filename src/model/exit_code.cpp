@@ -43,6 +43,35 @@ ExitCode code_of_count(const CountOutcome& count) {
   return all ? kExitGood : kExitUnresolved;
 }
 
+/// A shift on a value is answered by its band; contradicting certificates are a defect.
+ExitCode code_of_sweep(const CountOutcome& count, const SweepOutcome& sweep) {
+  if (!sweep.contradictions.empty()) return kExitInternal;
+  const bool all = std::all_of(count.counts.begin(), count.counts.end(), [](const ShiftCount& shift) {
+    return shift.certificate.level != Level::kNone && (shift.below || shift.holds_outside);
+  });
+  return all ? kExitGood : kExitUnresolved;
+}
+
+ExitCode code_of_bracket(const BracketOutcome& bracket) {
+  const bool all = std::all_of(bracket.critical.begin(), bracket.critical.end(),
+                               [](const CriticalValue& value) { return value.level != Level::kNone; });
+  return all && bracket.complete && bracket.complete->count ? kExitGood : kExitUnresolved;
+}
+
+ExitCode code_of_audit(const AuditOutcome& audit) {
+  if (audit.verdict == AuditVerdict::kUnresolved) return kExitUnresolved;
+  return audit.verdict == AuditVerdict::kComplete ? kExitGood : kExitNotGood;
+}
+
+ExitCode code_of_path(const PathOutcome& path) {
+  ExitCode code = kExitGood;
+  for (const PathStep& step : path.steps) {
+    if (step.verdict == Verdict::kUnresolved) return kExitUnresolved;
+    if (step.verdict != Verdict::kPositiveDefinite) code = kExitNotGood;
+  }
+  return code;
+}
+
 }  // namespace
 
 ExitCode exit_code(StatusKind kind) {
@@ -63,13 +92,20 @@ ExitCode exit_code(StatusKind kind) {
 }
 
 ExitCode exit_code(const Outcome& outcome, const Judgement& judgement) {
-  if (judgement.expectation) {
+  const bool contradicted = outcome.sweep && !outcome.sweep->contradictions.empty();
+  if (judgement.expectation && !contradicted) {
+    if (outcome.path) return from_comparison(compare(*judgement.expectation, *outcome.path));
+    if (outcome.bracket) return from_comparison(compare(*judgement.expectation, *outcome.bracket));
+    if (outcome.audit) return from_comparison(compare(*judgement.expectation, *outcome.audit));
     if (outcome.check) return from_comparison(compare(*judgement.expectation, *outcome.check));
     if (outcome.count) return from_comparison(compare(*judgement.expectation, *outcome.count));
   }
   ExitCode code = kExitGood;
   if (outcome.check) code = outcome.command == "locate" ? code_of_location(outcome) : code_of_check(*outcome.check);
-  if (outcome.count) code = code_of_count(*outcome.count);
+  if (outcome.count) code = outcome.sweep ? code_of_sweep(*outcome.count, *outcome.sweep) : code_of_count(*outcome.count);
+  if (outcome.bracket) code = code_of_bracket(*outcome.bracket);
+  if (outcome.audit) code = code_of_audit(*outcome.audit);
+  if (outcome.path) code = code_of_path(*outcome.path);
   return code == kExitGood && judgement.symmetric_part ? kExitNotGood : code;
 }
 

@@ -40,6 +40,8 @@ Comparison compare_inertia(const Expectation& expectation, const Inertia& inerti
     case Kind::kZero:
       return both(range(0, inertia.negative), range(expectation.count, inertia.zero));
     case Kind::kNegative:
+    case Kind::kNoneBelow:
+    case Kind::kComplete:
       break;
   }
   return range(expectation.count, inertia.negative);
@@ -56,6 +58,8 @@ Comparison compare_negative_range(const Expectation& expectation, std::pair<Inde
 
 Result<Expectation> parse_expectation(std::string_view text) {
   if (text == "positive-definite") return Expectation{Kind::kPositiveDefinite, 0};
+  if (text == "none-below") return Expectation{Kind::kNoneBelow, 0};
+  if (text == "complete") return Expectation{Kind::kComplete, 0};
   const auto colon = text.find(':');
   const auto word = text.substr(0, colon);
   if (colon != std::string_view::npos && (word == "zero" || word == "negative")) {
@@ -65,22 +69,39 @@ Result<Expectation> parse_expectation(std::string_view text) {
   }
   return Status::bad_usage(
       "bad-expectation", fmt::format("'{}' is not an expectation", text), "--expect",
-      "write positive-definite, zero:N or negative:N with a whole number N, e.g. zero:6");
+      "write positive-definite, zero:N or negative:N with a whole number N, e.g. zero:6; none-below with "
+      "bracket, complete with audit");
 }
 
 Status check_applicable(const Expectation& expectation, Question question) {
-  if (question == Question::kLocate) {
-    return Status::bad_usage("expectation-not-applicable", "locate tells what it finds, and its exit code whether",
-                             "--expect", "leave --expect out, or use it with check --locate");
+  const auto refuse = [](const char* why, const char* remedy) {
+    return Status::bad_usage("expectation-not-applicable", why, "--expect", remedy);
+  };
+  const Kind kind = expectation.kind;
+  switch (question) {
+    case Question::kLocate:
+      return refuse("locate tells what it finds, and its exit code whether",
+                    "leave --expect out, or use it with check --locate");
+    case Question::kForecast:
+      return refuse("a forecast gives no verdict to compare", "leave --expect out, or use it with check or count");
+    case Question::kBracket:
+      if (kind == Kind::kNoneBelow) return {};
+      return refuse("brackets can only be expected to hold no value", "write --expect none-below");
+    case Question::kAudit:
+      if (kind == Kind::kComplete) return {};
+      return refuse("an audited list can only be expected to be complete", "write --expect complete");
+    case Question::kCount:
+    case Question::kSweep:
+      if (kind == Kind::kZero) {
+        return refuse("a count does not tell zero directions apart",
+                      "use negative:N or positive-definite with count, or ask check");
+      }
+      break;
+    case Question::kCheck:
+      break;
   }
-  if (question == Question::kForecast) {
-    return Status::bad_usage("expectation-not-applicable", "a forecast gives no verdict to compare",
-                             "--expect", "leave --expect out, or use it with check or count");
-  }
-  if (question == Question::kCount && expectation.kind == Kind::kZero) {
-    return Status::bad_usage("expectation-not-applicable", "a count does not tell zero directions apart",
-                             "--expect", "use negative:N or positive-definite with count, or ask check");
-  }
+  if (kind == Kind::kNoneBelow) return refuse("this is an expectation of brackets", "use it with bracket --below B");
+  if (kind == Kind::kComplete) return refuse("this is an expectation of an audit", "use it with audit");
   return {};
 }
 
@@ -110,6 +131,28 @@ Comparison compare(const Expectation& expectation, const CountOutcome& count) {
     }
   }
   return answer;
+}
+
+Comparison compare(const Expectation& expectation, const PathOutcome& path) {
+  Comparison answer = Comparison::kMet;
+  for (const PathStep& step : path.steps) {
+    CheckOutcome check;
+    check.verdict = step.verdict;
+    check.inertia = step.inertia;
+    check.certificate = step.certificate;
+    answer = both(answer, compare(expectation, check));
+  }
+  return answer;
+}
+
+Comparison compare(const Expectation& /*none_below*/, const BracketOutcome& bracket) {
+  if (!bracket.none_below) return Comparison::kOpen;
+  return *bracket.none_below ? Comparison::kMet : Comparison::kNotMet;
+}
+
+Comparison compare(const Expectation& /*complete*/, const AuditOutcome& audit) {
+  if (audit.verdict == AuditVerdict::kUnresolved) return Comparison::kOpen;
+  return audit.verdict == AuditVerdict::kComplete ? Comparison::kMet : Comparison::kNotMet;
 }
 
 }  // namespace stanchion

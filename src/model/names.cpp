@@ -20,6 +20,22 @@ const char* name_of(Verdict verdict) {
   return "unresolved";
 }
 
+const char* name_of(AuditVerdict verdict) {
+  switch (verdict) {
+    case AuditVerdict::kComplete:
+      return "complete";
+    case AuditVerdict::kMissing:
+      return "missing";
+    case AuditVerdict::kSurplus:
+      return "surplus";
+    case AuditVerdict::kMissingAndSurplus:
+      return "missing_and_surplus";
+    case AuditVerdict::kUnresolved:
+      break;
+  }
+  return "unresolved";
+}
+
 const char* name_of(Level level) {
   switch (level) {
     case Level::kProved:

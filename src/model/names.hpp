@@ -10,6 +10,9 @@ namespace stanchion {
 /// "positive_definite", "positive_semidefinite", ..., "unresolved".
 const char* name_of(Verdict verdict);
 
+/// "complete", "missing", "surplus", "missing_and_surplus" or "unresolved".
+const char* name_of(AuditVerdict verdict);
+
 /// "proved", "statistical" or "none".
 const char* name_of(Level level);
 

@@ -34,6 +34,11 @@ constexpr const char* kOutside =
     "state can tell.";
 constexpr const char* kPractice =
     "Adequacy: the verdict defers to licensed practice and to the codes in force where the structure stands.";
+constexpr const char* kBetweenSteps =
+    "What happens between two steps of the load path: a direction that turns negative and back again between two of the "
+    "matrices is not seen, nor is a snap to another path.";
+constexpr const char* kListedShapes =
+    "Mode shapes that belong to the list: only the numbers were audited, and only those in the range.";
 constexpr const char* kForecastOnly =
     "Everything numerical: only the pattern of the matrix was looked at, and nothing was factored. Delayed "
     "pivots can raise work and memory above the forecast.";
@@ -54,7 +59,9 @@ std::vector<std::string> not_checked(const Request& request, Question question) 
     sentences.emplace_back(request.input.added.empty() ? kNoLoad : kOnlyAddedLoad);
   }
   if (request.input.symmetric_part) sentences.emplace_back(kSymmetricPart);
-  if (question == Question::kCount && request.pencil == Pencil::kStiffness)
+  if (question == Question::kCheck && !request.steps.empty()) sentences.emplace_back(kBetweenSteps);
+  if (question == Question::kAudit) sentences.emplace_back(kListedShapes);
+  if (question != Question::kCheck && request.pencil == Pencil::kStiffness)
     sentences.emplace_back(kMixedUnits);
   if (question == Question::kCheck || question == Question::kLocate) sentences.emplace_back(kResolution);
   if (question == Question::kLocate || request.want_location) sentences.emplace_back(kCauses);

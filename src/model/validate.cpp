@@ -10,6 +10,7 @@ namespace stanchion {
 namespace {
 
 constexpr int kMostThreads = 1024;
+constexpr Index kMostPoints = 100'000, kMostValues = 10'000;
 
 Status out_of_range(std::string option, std::string message, std::string remedy) {
   return Status::bad_usage("out-of-range", std::move(message), std::move(option), std::move(remedy));
@@ -85,6 +86,118 @@ Status validate_shifts(const Request& request, Question question) {
   return {};
 }
 
+Status validate_sweep(const SweepRequest& sweep) {
+  if (!std::isfinite(sweep.from) || !std::isfinite(sweep.to) || !(sweep.from < sweep.to)) {
+    return out_of_range("--from, --to", fmt::format("from {} to {} is no range", sweep.from, sweep.to),
+                        "give two numbers, the smaller one first, e.g. --from 0.5 --to 2");
+  }
+  if (sweep.points < 2 || sweep.points > kMostPoints) {
+    return out_of_range("--points", fmt::format("{} points are not between 2 and {}", sweep.points, kMostPoints),
+                        "both ends are points; e.g. --points 11");
+  }
+  if (sweep.geometric && !(sweep.from * sweep.to > 0)) {
+    return contradiction("--spacing", "geometric spacing cannot reach or cross 0",
+                         "give ends of one sign, or sweep each side on its own");
+  }
+  if (!(sweep.width > 0 && sweep.width < 1)) {
+    return out_of_range("--width", fmt::format("{} is no relative width between 0 and 1", sweep.width),
+                        "e.g. --width 1e-3");
+  }
+  return {};
+}
+
+/// Values are in the pencil's own unit, or hertz for K - s M.
+Status validate_unit(const Request& request, ValueUnit unit, const char* option) {
+  const bool mass = request.pencil == Pencil::kMass;
+  if (mass == (unit != ValueUnit::kFactor)) return {};
+  return contradiction(option, mass ? "values of K - s M are omega^2 or hertz" : "only frequencies have such a unit",
+                       mass ? "write --unit omega2 or --unit hertz" : "leave --unit out, or name the mass with --mass");
+}
+
+Status validate_range(const std::optional<double>& from, const std::optional<double>& to) {
+  for (const auto& end : {from, to}) {
+    if (end && !std::isfinite(*end)) return out_of_range("--from, --to", "the ends must be finite", "give two numbers");
+  }
+  if (from && to && !(*from < *to)) {
+    return out_of_range("--from, --to", fmt::format("from {} to {} is no range", *from, *to),
+                        "give the smaller number first");
+  }
+  return {};
+}
+
+Status validate_bracket(const Request& request) {
+  const BracketRequest& bracket = request.bracket;
+  if (Status status = validate_unit(request, bracket.unit, "--unit"); !status.ok()) return status;
+  if (Status status = validate_range(bracket.from, bracket.to); !status.ok()) return status;
+  const bool range = bracket.below ? bracket.from || bracket.to : bracket.from && bracket.to;
+  if (bracket.first && (bracket.from || bracket.to)) {
+    return contradiction("--first", "the first ones and a range are two questions", "give one of the two");
+  }
+  if (!bracket.first && !range) {
+    return Status::bad_usage("missing-argument", "nothing was asked", "--first, --below, --from, --to",
+                             "write --first 10, --below 1.5, or --from 1 --to 2");
+  }
+  if (bracket.first && (*bracket.first < 1 || *bracket.first > kMostValues)) {
+    return out_of_range("--first", fmt::format("{} is not between 1 and {}", *bracket.first, kMostValues),
+                        "ask for a range with --from and --to instead");
+  }
+  if (bracket.below && (bracket.to == 0.0 || bracket.from == 0.0)) {
+    return out_of_range("--below", "nothing lies between 0 and 0", "give a factor, e.g. --below 1.5");
+  }
+  if (bracket.side != Side::kPositive && (request.pencil != Pencil::kGeometric || !bracket.first)) {
+    return contradiction("--side", "only the first factors of K + f G can be asked by side",
+                         "leave --side out; a range may reach over 0");
+  }
+  if (!(bracket.width > 0 && bracket.width < 1)) {
+    return out_of_range("--width", fmt::format("{} is no relative width between 0 and 1", bracket.width),
+                        "e.g. --width 1e-8");
+  }
+  return {};
+}
+
+Status validate_audit(const Request& request) {
+  if (request.pencil == Pencil::kStiffness && request.audit.unit != ValueUnit::kFactor) {
+    return validate_unit(request, request.audit.unit, "--unit");
+  }
+  if (request.audit.values.empty()) {
+    return Status::bad_usage("missing-argument", "no list was named", "--values", "write --values list.csv");
+  }
+  if (Status status = validate_unit(request, request.audit.unit, "--unit"); !status.ok()) return status;
+  if (request.audit.tolerance && !(*request.audit.tolerance >= 0 && *request.audit.tolerance < 1)) {
+    return out_of_range("--tolerance", fmt::format("{} is no relative tolerance", *request.audit.tolerance),
+                        "e.g. --tolerance 1e-6");
+  }
+  return validate_range(request.audit.from, request.audit.to);
+}
+
+Status validate_load_path(const Request& request) {
+  if (request.steps.empty()) return {};
+  const char* what = request.want_witness    ? "--witness"
+                     : request.want_location ? "--locate"
+                     : request.input.multipliers ? "--multipliers"
+                                                 : nullptr;
+  if (what == nullptr) return {};
+  return contradiction(what, "this belongs to one matrix, not to a load path", "ask it of the step that you want to know about");
+}
+
+Status validate_question(const Request& request, Question question) {
+  switch (question) {
+    case Question::kSweep:
+      return validate_sweep(request.sweep);
+    case Question::kBracket:
+      return validate_bracket(request);
+    case Question::kAudit:
+      return validate_audit(request);
+    case Question::kCheck:
+      return validate_load_path(request);
+    case Question::kCount:
+    case Question::kLocate:
+    case Question::kForecast:
+      break;
+  }
+  return {};
+}
+
 Status validate_numbers(const Request& request) {
   if (!(request.risk > 0 && request.risk < 1)) {
     return out_of_range("--risk", fmt::format("{} is no probability between 0 and 1", request.risk),
@@ -132,6 +245,7 @@ Status validate(const Request& request, Question question) {
   if (Status status = validate_matrices(request, question); !status.ok()) return status;
   if (Status status = validate_input(request.input); !status.ok()) return status;
   if (Status status = validate_shifts(request, question); !status.ok()) return status;
+  if (Status status = validate_question(request, question); !status.ok()) return status;
   return validate_numbers(request);
 }
 

@@ -7,6 +7,7 @@
 #include "model/input_files.hpp"
 #include "model/names.hpp"
 #include "report/certificate_json.hpp"
+#include "report/claim_read.hpp"
 #include "report/json_member.hpp"
 
 namespace stanchion {
@@ -247,6 +248,10 @@ Result<CertificateDocument> read_certificate(std::string_view text, const std::s
   } catch (const BadMember& bad) {
     return bad_certificate(bad.message, path);
   }
+}
+
+ShiftCount read_count_claim(const Member& claim) {
+  return count_of(claim);
 }
 
 }  // namespace stanchion

@@ -10,6 +10,7 @@
 #include "report/html_style.hpp"
 #include "report/markup.hpp"
 #include "report/numbers.hpp"
+#include "report/staircase_svg.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {
@@ -36,6 +37,14 @@ std::string standing(const Outcome& outcome) {
   if (outcome.check) weigh(outcome.check->certificate.level);
   if (outcome.count) {
     for (const ShiftCount& count : outcome.count->counts) weigh(count.level);
+  }
+  if (outcome.bracket) {
+    weigh(outcome.bracket->complete ? outcome.bracket->complete->level : Level::kNone);
+    for (const CriticalValue& value : outcome.bracket->critical) weigh(value.level);
+  }
+  if (outcome.audit) weigh(outcome.audit->range.level);
+  if (outcome.path) {
+    for (const PathStep& step : outcome.path->steps) weigh(step.certificate.level);
   }
   std::string text;
   if (any) {
@@ -99,6 +108,7 @@ std::string question_to_html(const Outcome& outcome) {
 
 /// The steps of the counts, where there are several.
 std::string staircase(const Outcome& outcome) {
+  if (outcome.sweep) return staircase_svg(outcome, false);
   if (!outcome.count || outcome.count->counts.size() < 2) return "";
   std::vector<std::pair<double, Index>> steps;
   for (const ShiftCount& count : outcome.count->counts) steps.emplace_back(count.shift, count.below.value_or(count.below_range.first));

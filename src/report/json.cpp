@@ -2,6 +2,7 @@
 
 #include "model/names.hpp"
 #include "report/json_parts.hpp"
+#include "report/json_spectrum.hpp"
 
 namespace stanchion {
 namespace {
@@ -183,6 +184,7 @@ void add_answer(Json& document, const Outcome& outcome) {
   } else if (outcome.command == "locate") {
     add_location(document, {});  // nothing is certain: nothing is named
   }
+  json_parts::add_spectrum(document, outcome);
   if (outcome.forecast) document["forecast"] = json_of(*outcome.forecast);
 }
 

@@ -30,6 +30,10 @@ void Page::wrapped(const std::string& lead, const std::string& text) {
   text_ += line + "\n";
 }
 
+void Page::line(const std::string& text) {
+  text_ += text.substr(0, text.find_last_not_of(' ') + 1) + "\n";
+}
+
 void Page::sentence(const std::string& text) {
   blocks_.push_back({Kind::kSentence, {}, text, {}, 0});
   wrapped("", text);

@@ -23,6 +23,8 @@ class Page {
 
   /// A sentence at the left margin.
   void sentence(const std::string& text);
+  /// A line as it is, never wrapped: for pictures, which other renderings draw in their own way. No block.
+  void line(const std::string& text);
   /// A section title, set off by an empty line.
   void title(const std::string& text);
   /// "  label          text", the text hanging beside its label.

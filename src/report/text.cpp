@@ -107,8 +107,18 @@ std::string backing_in_words(Level level, const std::optional<double>& failure_p
 }
 
 void write_answer(Page& page, const Outcome& outcome) {
-  if (outcome.check) write_check(page, outcome);
-  if (outcome.count) write_count(page, outcome);
+  if (outcome.path) {
+    write_path(page, outcome);
+  } else if (outcome.check) {
+    write_check(page, outcome);
+  }
+  if (outcome.bracket) write_bracket(page, outcome);
+  if (outcome.audit) write_audit(page, outcome);
+  if (outcome.sweep) {
+    write_sweep(page, outcome);
+  } else if (outcome.count) {
+    write_count(page, outcome);
+  }
   if (outcome.forecast) write_forecast(page, outcome);
 }
 

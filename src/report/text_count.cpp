@@ -113,6 +113,16 @@ std::vector<std::vector<std::string>> rows_of(const std::vector<ShiftCount>& cou
 
 }  // namespace
 
+void write_counts_table(Page& page, const CountOutcome& answer, Index rows_counted) {
+  page.table(rows_of(answer.counts, rows_counted), any_margin(answer.counts) ? 3 : 2);
+  if (any_exact_but_for_margin(answer.counts)) {
+    page.sentence("A count is exact unless one of what is counted lies within the margin of its shift.");
+  }
+  if (any_relative(answer.counts)) {
+    page.sentence("Statistics: the factor was held against the matrix itself, on random vectors.");
+  }
+}
+
 void write_count(Page& page, const Outcome& outcome) {
   const CountOutcome& answer = *outcome.count;
   if (answer.counts.empty()) {
@@ -122,13 +132,7 @@ void write_count(Page& page, const Outcome& outcome) {
   page.sentence(headline(answer.counts));
   for (const std::string& sentence : answer.sentences) page.sentence(sentence);
   page.blank();
-  page.table(rows_of(answer.counts, outcome.rows_analysed), any_margin(answer.counts) ? 3 : 2);
-  if (any_exact_but_for_margin(answer.counts)) {
-    page.sentence("A count is exact unless one of what is counted lies within the margin of its shift.");
-  }
-  if (any_relative(answer.counts)) {
-    page.sentence("Statistics: the factor was held against the matrix itself, on random vectors.");
-  }
+  write_counts_table(page, answer, outcome.rows_analysed);
 }
 
 }  // namespace stanchion

@@ -93,15 +93,17 @@ std::optional<Staircase::Bracket> Staircase::bracket(Offset number) const {
   return bracket;
 }
 
-std::vector<double> splits(const std::vector<Jump>& jumps, double width, double floor, bool also_single) {
+std::vector<double> Staircase::splits(double width, double floor) const {
   std::vector<double> middles;
-  for (const Jump& jump : jumps) {
-    if (jump.count == 1 && !also_single) continue;
-    const double span = jump.high - jump.low;
-    const double size = std::max(std::fabs(jump.low), std::fabs(jump.high));
-    if (!(span > width * size) || !(span > floor)) continue;
-    const double middle = jump.low + span / 2;
-    if (middle > jump.low && middle < jump.high) middles.push_back(middle);
+  for (std::size_t i = 1; i < facts_.size(); ++i) {
+    const CountFact &before = facts_[i - 1], &here = facts_[i];
+    if (here.least - before.most < 2) continue;
+    const double low = before.band ? std::max(before.shift, before.band->second) : before.shift;
+    const double high = here.band ? std::min(here.shift, here.band->first) : here.shift;
+    const double size = std::max(std::fabs(low), std::fabs(high));
+    if (!(high - low > width * size) || !(high - low > floor)) continue;
+    const double middle = low + (high - low) / 2;
+    if (middle > low && middle < high) middles.push_back(middle);
   }
   return middles;
 }

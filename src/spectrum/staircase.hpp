@@ -49,13 +49,13 @@ class Staircase {
   };
   std::optional<Bracket> bracket(Offset number) const;
 
+  /// Shifts that would tell more: the middle of each stretch between neighbouring shifts that holds more than one value
+  /// and is wider than `width` times the larger size of its ends, and than `floor`. A band around a shift is not split:
+  /// another shift in it would say no more.
+  std::vector<double> splits(double width, double floor) const;
+
  private:
   std::vector<CountFact> facts_;
 };
-
-/// Shifts that would split `jumps` further: the middle of each jump of more than one value (or of any, when
-/// `also_single`) that is wider than `width` times the larger size of its ends. `floor`: nothing narrower than this
-/// absolute width is split.
-std::vector<double> splits(const std::vector<Jump>& jumps, double width, double floor, bool also_single);
 
 }  // namespace stanchion

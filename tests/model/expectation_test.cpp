@@ -28,9 +28,34 @@ TEST(Expectation, ParsesItsThreeForms) {
   EXPECT_EQ(negative->count, 0);
 }
 
+TEST(Expectation, BracketsAndAuditsHaveOneEach) {
+  const auto none = parse_expectation("none-below"), complete = parse_expectation("complete");
+  ASSERT_TRUE(none.ok() && complete.ok());
+  EXPECT_TRUE(check_applicable(*none, Question::kBracket).ok());
+  EXPECT_TRUE(check_applicable(*complete, Question::kAudit).ok());
+  for (const Question question : {Question::kCheck, Question::kCount, Question::kSweep, Question::kAudit}) {
+    EXPECT_FALSE(check_applicable(*none, question).ok());
+  }
+  for (const Question question : {Question::kCheck, Question::kCount, Question::kSweep, Question::kBracket}) {
+    EXPECT_FALSE(check_applicable(*complete, question).ok());
+  }
+  BracketOutcome bracket;
+  EXPECT_EQ(compare(*none, bracket), Comparison::kOpen);
+  bracket.none_below = true;
+  EXPECT_EQ(compare(*none, bracket), Comparison::kMet);
+  bracket.none_below = false;
+  EXPECT_EQ(compare(*none, bracket), Comparison::kNotMet);
+  AuditOutcome audit;
+  EXPECT_EQ(compare(*complete, audit), Comparison::kOpen);
+  audit.verdict = AuditVerdict::kComplete;
+  EXPECT_EQ(compare(*complete, audit), Comparison::kMet);
+  audit.verdict = AuditVerdict::kMissingAndSurplus;
+  EXPECT_EQ(compare(*complete, audit), Comparison::kNotMet);
+}
+
 TEST(Expectation, RefusesAnythingElse) {
   for (const char* text : {"", "zero", "zero:", "zero:-1", "zero:6x", "zero: 6", "negative:99999999999",
-                           "positive-definite:1", "Positive-Definite", "none-below", "zero:1.5"}) {
+                           "positive-definite:1", "Positive-Definite", "none-below:1", "complete:", "none below", "zero:1.5"}) {
     const auto parsed = parse_expectation(text);
     ASSERT_FALSE(parsed.ok()) << text;
     EXPECT_EQ(parsed.status().code(), "bad-expectation");

@@ -27,7 +27,8 @@ class UsageTest(ProgramTest):
     def test_options_are_not_abbreviated(self):
         self.assertIn("--thread'", self.expect_failure(2, "unknown-argument", "check", self.stiffness, "--thread", 1))
         self.expect_failure(2, "unknown-argument", "check", self.stiffness, "--at", "1")
-        self.expect_failure(2, "unknown-argument", "check", self.stiffness, "surplus.mtx")
+        self.expect_failure(2, "unknown-argument", "count", self.stiffness, "surplus.mtx")
+        self.expect_failure(2, "file-not-found", "check", self.stiffness, "no-second-step.mtx")
 
     def test_missing_arguments(self):
         self.expect_failure(2, "missing-argument", "check")

@@ -1,0 +1,36 @@
+// What a bracket is asked, in the pencil's own unit, and the values found so far.
+#pragma once
+
+#include <optional>
+#include <vector>
+
+#include "engine/pencil_counter.hpp"
+#include "spectrum/residual_intervals.hpp"
+
+namespace stanchion {
+
+/// A range of values; an open end is absent. For factors 0 is an end like any other.
+struct ValueRange {
+  std::optional<double> low, high;
+};
+
+/// Values that certainly lie in [low, high], as many as `count`, once the range is shown complete.
+struct FoundValues {
+  double low = 0, high = 0, value = 0;
+  Index count = 1;
+  Level level = Level::kNone;
+  double failure_probability = 0;
+  const char* proof = "counts";
+  std::vector<Mode> modes;
+};
+
+/// All that was found, ascending, and the range that the counts at its ends show complete.
+struct FoundRange {
+  std::vector<FoundValues> values;
+  std::optional<CountedRange> complete;
+};
+
+/// A counted range from two facts; level and failure probability of both.
+CountedRange counted_range(const std::optional<CountFact>& low, const CountFact& high, double from, double to);
+
+}  // namespace stanchion

@@ -1,0 +1,79 @@
+#include "spectrum/listed_values.hpp"
+
+#include <algorithm>
+#include <cmath>
+
+namespace stanchion {
+namespace {
+
+void sort_by_low(std::vector<ValueSpan>& spans) {
+  std::stable_sort(spans.begin(), spans.end(), [](const ValueSpan& a, const ValueSpan& b) { return a.low < b.low; });
+}
+
+double middle(double a, double b) {
+  return a + (b - a) / 2;
+}
+
+}  // namespace
+
+std::vector<ValueSpan> clusters_of(std::vector<ValueSpan> values) {
+  sort_by_low(values);
+  std::vector<ValueSpan> clusters;
+  for (ValueSpan& value : values) {
+    if (clusters.empty() || value.low > clusters.back().high) {
+      clusters.push_back(std::move(value));
+      continue;
+    }
+    ValueSpan& cluster = clusters.back();
+    cluster.high = std::max(cluster.high, value.high);
+    cluster.count += value.count;
+    cluster.members.insert(cluster.members.end(), value.members.begin(), value.members.end());
+  }
+  return clusters;
+}
+
+std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain, double from,
+                                   double to) {
+  struct Item {
+    double low, high;
+    bool is_listed;
+    std::size_t number;
+  };
+  std::vector<Item> items;
+  for (std::size_t k = 0; k < listed.size(); ++k) items.push_back({listed[k].low, listed[k].high, true, k});
+  for (std::size_t k = 0; k < certain.size(); ++k) items.push_back({certain[k].low, certain[k].high, false, k});
+  std::stable_sort(items.begin(), items.end(), [](const Item& a, const Item& b) { return a.low < b.low; });
+  std::vector<Stretch> stretches;
+  for (const Item& item : items) {
+    if (stretches.empty() || item.low > stretches.back().high) {
+      stretches.emplace_back();
+      stretches.back().low = item.low;
+      stretches.back().high = item.high;
+    }
+    Stretch& stretch = stretches.back();
+    stretch.high = std::max(stretch.high, item.high);
+    if (item.is_listed) {
+      const ValueSpan& span = listed[item.number];
+      stretch.listed += span.count;
+      stretch.members.insert(stretch.members.end(), span.members.begin(), span.members.end());
+    } else {
+      stretch.certain += certain[item.number].count;
+      stretch.certain_spans.push_back(item.number);
+    }
+  }
+  for (std::size_t k = 0; k < stretches.size(); ++k) {
+    const double end = k + 1 < stretches.size() ? middle(stretches[k].high, stretches[k + 1].low) : to;
+    stretches[k].low = k > 0 ? stretches[k - 1].high : from;
+    stretches[k].high = end;
+  }
+  return stretches;
+}
+
+std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to) {
+  std::vector<double> shifts{from};
+  for (std::size_t k = 1; k < clusters.size(); ++k) shifts.push_back(middle(clusters[k - 1].high, clusters[k].low));
+  shifts.push_back(to);
+  return shifts;
+}
+
+}  // namespace stanchion

@@ -1,0 +1,122 @@
+"""stanchion sweep: the staircase, refinement, the picture, interruption and resumption."""
+
+import unittest
+import xml.etree.ElementTree
+
+from program import ProgramTest, chain, chain_eigenvalues, diagonal
+
+ROWS = 40
+VALUES = chain_eigenvalues(ROWS)  # closed form: 2 - 2 cos(k pi / (n + 1))
+
+
+class SweepTest(ProgramTest):
+    def setUp(self):
+        super().setUp()
+        self.stiffness = self.matrix("K.mtx", ROWS, chain(ROWS, held=2))
+        self.geometric = self.matrix("G.mtx", ROWS, diagonal([-1] * ROWS))
+
+    def sweep(self, code, *arguments):
+        return self.expect(code, "sweep", self.stiffness, *arguments)
+
+    def test_counts_and_jumps_follow_the_closed_form(self):
+        document = self.sweep(0, "--geometric", self.geometric, "--from", 0.001, "--to", 1.003, "--points", 9)
+        self.assertEqual(len(document["counts"]), 9)
+        for count in document["counts"]:
+            self.assertEqual(count["below"], sum(value < count["shift"] for value in VALUES))
+        for jump in document["jumps"]:
+            self.assertEqual(jump["count"], sum(jump["low"] < value < jump["high"] for value in VALUES))
+        self.assertEqual(sum(jump["count"] for jump in document["jumps"]), document["counts"][-1]["below"])
+        self.assertEqual(document["contradictions"], [])
+        self.assertTrue(any("convexity" in sentence for sentence in document["sentences"]))
+
+    def test_refine_isolates_every_value(self):
+        document = self.sweep(0, "--geometric", self.geometric, "--from", 0.001, "--to", 1.003, "--points", 3, "--refine")
+        self.assertTrue(all(jump["count"] == 1 for jump in document["jumps"]))
+        self.assertEqual(len(document["jumps"]), sum(0.001 < value < 1.003 for value in VALUES))
+
+    def test_refine_stops_at_the_width_asked_for_a_double_value(self):
+        path = self.matrix("D.mtx", 3, diagonal([1, 2 / 3, 2 / 3]))
+        document = self.expect(0, "sweep", path, "--from", 0.1, "--to", 3, "--points", 2, "--refine", "--width", "1e-6")
+        double = [jump for jump in document["jumps"] if jump["count"] == 2]
+        self.assertEqual(len(double), 1)
+        self.assertTrue(double[0]["low"] <= 2 / 3 <= double[0]["high"])
+        self.assertLessEqual(double[0]["high"] - double[0]["low"], 1e-6)
+
+    def test_both_signs_of_the_factor_in_one_sweep(self):
+        geometric = self.matrix("B.mtx", 3, diagonal([-1, 1, 1]))  # factors 1, -2, -3
+        path = self.matrix("D.mtx", 3, diagonal([1, 2, 3]))
+        document = self.expect(0, "sweep", path, "--geometric", geometric, "--from", -4, "--to", 1.5, "--points", 12)
+        jumps = [(jump["low"], jump["high"], jump["count"]) for jump in document["jumps"]]
+        for value in (-3, -2, 1):
+            self.assertTrue(any(low <= value <= high and count == 1 for low, high, count in jumps), jumps)
+        self.assertEqual(sum(count for _, _, count in jumps), 3)
+
+    def test_geometric_spacing(self):
+        document = self.sweep(0, "--from", 0.01, "--to", 1.0, "--points", 3, "--spacing", "geometric")
+        self.assertAlmostEqual(document["counts"][1]["shift"], 0.1)
+        self.expect_failure(2, "contradiction", "sweep", self.stiffness, "--from", -1, "--to", 1, "--spacing", "geometric")
+
+    def test_the_picture_is_a_picture(self):
+        self.sweep(0, "--geometric", self.geometric, "--from", 0.5, "--to", 1.0, "--points", 4, "--svg", "steps.svg")
+        root = xml.etree.ElementTree.parse(self.folder / "steps.svg").getroot()
+        self.assertTrue(root.tag.endswith("svg"))
+        self.assertEqual(sum(element.tag.endswith("circle") for element in root.iter()), 4)
+
+    def test_an_interrupted_sweep_goes_on_where_it_stopped(self):
+        arguments = ("--geometric", self.geometric, "--from", 0.1, "--to", 1.0, "--points", 8, "--results", "r.jsonl")
+        whole = self.sweep(0, *arguments)
+        path = self.folder / "r.jsonl"
+        lines = path.read_text(encoding="utf-8").splitlines(keepends=True)
+        self.assertEqual(len(lines), 9)
+        path.write_text("".join(lines[:4]) + lines[4][:25], encoding="utf-8")  # killed in the middle of a line
+        resumed = self.sweep(0, *arguments)
+        self.assertEqual(resumed["resumed"], 3)
+        self.assertEqual(resumed["counts"], whole["counts"])
+        self.assertEqual(resumed["jumps"], whole["jumps"])
+        self.assertEqual(len(path.read_text(encoding="utf-8").splitlines()), 9)
+        self.assertEqual(self.sweep(0, *arguments)["resumed"], 8)
+
+    def test_results_of_another_sweep_are_refused(self):
+        self.sweep(0, "--from", 0.1, "--to", 1.0, "--points", 3, "--results", "r.jsonl")
+        before = (self.folder / "r.jsonl").read_bytes()
+        self.expect_failure(2, "other-sweep", "sweep", self.stiffness, "--from", 0.1, "--to", 1.1, "--points", 3,
+                            "--results", "r.jsonl")
+        self.assertEqual((self.folder / "r.jsonl").read_bytes(), before)
+        text = before.decode().splitlines(keepends=True)
+        (self.folder / "r.jsonl").write_text(text[0] + '{"number": 1}\n', encoding="utf-8")
+        self.expect_failure(2, "bad-journal", "sweep", self.stiffness, "--from", 0.1, "--to", 1.0, "--points", 3,
+                            "--results", "r.jsonl")
+
+    def test_the_answer_is_the_same_for_any_number_of_threads(self):
+        arguments = ("--geometric", self.geometric, "--from", 0.1, "--to", 1.0, "--points", 5, "--refine")
+        one, two = (self.sweep(0, *arguments, "--threads", threads) for threads in (1, 2))
+        for key in ("counts", "jumps", "sentences", "risk"):
+            self.assertEqual(one[key], two[key])
+
+    def test_a_shift_on_a_value_is_told_by_its_band(self):
+        path = self.matrix("D.mtx", 3, diagonal([1, 2, 3]))
+        document = self.expect(0, "sweep", path, "--from", 0.5, "--to", 3.5, "--points", 3)
+        middle = document["counts"][1]
+        self.assertEqual((middle["below"], middle["below_range"]), (None, [1, 2]))
+        self.assertTrue(any(jump["low"] <= 2 <= jump["high"] and jump["count"] == 1 for jump in document["jumps"]))
+
+    def test_k_not_definite_reports_the_inertia_only(self):
+        path = self.matrix("I.mtx", 3, diagonal([-1, 2, 3]))
+        geometric = self.matrix("B.mtx", 3, diagonal([1, -1, -1]))
+        document = self.expect(0, "sweep", path, "--geometric", geometric, "--from", 0.45, "--to", 4.1, "--points", 8)
+        self.assertIn("stiffness-not-definite", [warning["code"] for warning in document["warnings"]])
+        self.assertTrue(all("negative directions" in count["meaning"] for count in document["counts"]))
+        self.assertIn(-1, [jump["count"] for jump in document["jumps"]])
+
+    def test_bad_questions(self):
+        for arguments, code in ((("--from", 1), "missing-argument"), (("--from", 2, "--to", 1), "out-of-range"),
+                                (("--from", 1, "--to", 2, "--points", 1), "out-of-range"),
+                                (("--from", 1, "--to", 2, "--spacing", "cubic"), "bad-word"),
+                                (("--from", 1, "--to", 2, "--width", 0), "out-of-range"),
+                                (("--from", 1, "--to", 2, "--svg", "-"), "bad-argument")):
+            with self.subTest(arguments):
+                self.expect_failure(2, code, "sweep", self.stiffness, *arguments)
+
+
+if __name__ == "__main__":
+    unittest.main()
