@@ -23,21 +23,18 @@ class ScalarFactorizer {
  public:
   ScalarFactorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
                    ThreadPool& pool)
-      : run_{analysis, matrix, options, {}, {}, {}, {}, {}, {}}, pool_(pool) {
-    const auto fronts = static_cast<std::size_t>(analysis.tree.fronts);
-    run_.children.resize(fronts);
-    run_.waiting.resize(fronts);
-    for (Index f = 0; f < analysis.tree.fronts; ++f) {
-      const Index parent = analysis.tree.parent[f];
-      if (parent >= 0) run_.children[static_cast<std::size_t>(parent)].push_back(f);
-    }
+      : run_{analysis, matrix,
+             options,  children_of(analysis.tree),
+             {},       MemoryLedger(options.memory_cap_bytes)},
+        pool_(pool) {
+    run_.waiting.resize(static_cast<std::size_t>(analysis.tree.fronts));
   }
 
   Result<Factorization> run() {
     const Stopwatch watch;
     Factorization result;
     run_.probe = Worker::draw_probe(run_.matrix, run_.options.seed);
-    run_.book(run_.probe.bytes());
+    run_.memory.book(run_.probe.bytes());
     result.component_signs.resize(static_cast<std::size_t>(run_.analysis.tree.components));
     run_subtrees();
     collect(result);
@@ -48,7 +45,7 @@ class ScalarFactorizer {
     if (!status_.ok()) return status_;
     // Sums of non-negative terms of any practical length, and heads standing for numbers, stay within 0.1 %.
     result.error_bound *= 1.001;
-    result.peak_bytes = run_.peak_bytes;
+    result.peak_bytes = run_.memory.peak();
     result.seconds = watch.seconds();
     return result;
   }
@@ -132,29 +129,10 @@ class ScalarFactorizer {
     }
   }
 
-  static void note_fault(Factorization& result, Index row) {
-    if (row < 0) return;
-    result.fault_row = result.fault ? std::min(result.fault_row, row) : row;
-    result.fault = true;
-  }
-
   /// Adds the workers' counts to the result and lets them go.
   void collect(Factorization& result) {
     for (const auto& worker : workers_) {
-      if (!worker) continue;
-      result.stopped = result.stopped || worker->stopped;
-      result.breakdown = result.breakdown || worker->breakdown;
-      note_fault(result, worker->fault_row);
-      result.delayed_pivots += worker->delayed_pivots;
-      result.two_by_two_pivots += worker->two_by_two_pivots;
-      if (!(worker->largest_row_error <= result.error_bound)) result.error_bound = worker->largest_row_error;
-      for (std::size_t c = 0; c < worker->signs.size(); ++c) {
-        for (PivotSigns* total : {&result.component_signs[c], &result.signs}) {
-          total->negative += worker->signs[c].negative;
-          total->zero += worker->signs[c].zero;
-          total->positive += worker->signs[c].positive;
-        }
-      }
+      if (worker) result.collect(*worker);
     }
     workers_.clear();
   }

@@ -76,7 +76,7 @@ template FormedEntry<double> form_entry(const ShiftedMatrix&, Offset, Index, Ind
 template FormedEntry<DoubleDouble> form_entry(const ShiftedMatrix&, Offset, Index, Index);
 
 template <class Scalar>
-void ScalarWorker<Scalar>::add_matrix_entries(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix) {
+void ScalarWorker<Scalar>::add_matrix_entries(const FrontRows& rows, const ScalarBlock<Scalar>& matrix) {
   const MatrixFamily& family = *run_.matrix.family;
   const Index first = run_.analysis.tree.first_column[rows.front];
   for (Index j = 0; j < rows.own; ++j) {
@@ -123,13 +123,8 @@ ScalarProbe ScalarWorker<Scalar>::draw_probe(const ShiftedMatrix& matrix, std::u
 template <class Scalar>
 void ScalarWorker<Scalar>::add_contribution(Index child, const ScalarBlock<Scalar>& matrix,
                                             ThreadPool* team) {
-  const AssemblyTree& tree = run_.analysis.tree;
   const WaitingBlock& block = run_.waiting[static_cast<std::size_t>(child)];
-  map_.clear();
-  for (const Index position : block.delayed) map_.push_back(local_of_[position]);
-  for (Offset k = tree.row_start[child]; k < tree.row_start[Offset{child} + 1]; ++k) {
-    map_.push_back(local_of_[tree.rows_below[k]]);
-  }
+  map_child_rows(run_.analysis.tree, child, block.delayed, local_of_, map_);
   for (Index i = 0; i < block.order; ++i) {
     const auto to = static_cast<std::size_t>(map_[static_cast<std::size_t>(i)]);
     row_error_[to] += block.row_error[i];
@@ -150,7 +145,7 @@ void ScalarWorker<Scalar>::add_contribution(Index child, const ScalarBlock<Scala
 }
 
 template <class Scalar>
-void ScalarWorker<Scalar>::assemble(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix,
+void ScalarWorker<Scalar>::assemble(const FrontRows& rows, const ScalarBlock<Scalar>& matrix,
                                     ThreadPool* team) {
   const auto order = static_cast<std::size_t>(rows.order);
   row_error_.assign(order, 0);
@@ -173,12 +168,12 @@ void ScalarWorker<Scalar>::assemble(const RowsOfFront& rows, const ScalarBlock<S
 // The rest of the class is instantiated in front_worker.cpp.
 template ScalarProbe ScalarWorker<double>::draw_probe(const ShiftedMatrix&, std::uint64_t);
 template ScalarProbe ScalarWorker<DoubleDouble>::draw_probe(const ShiftedMatrix&, std::uint64_t);
-template void ScalarWorker<double>::assemble(const RowsOfFront&, const ScalarBlock<double>&, ThreadPool*);
-template void ScalarWorker<double>::add_matrix_entries(const RowsOfFront&, const ScalarBlock<double>&);
+template void ScalarWorker<double>::assemble(const FrontRows&, const ScalarBlock<double>&, ThreadPool*);
+template void ScalarWorker<double>::add_matrix_entries(const FrontRows&, const ScalarBlock<double>&);
 template void ScalarWorker<double>::add_contribution(Index, const ScalarBlock<double>&, ThreadPool*);
-template void ScalarWorker<DoubleDouble>::assemble(const RowsOfFront&, const ScalarBlock<DoubleDouble>&,
+template void ScalarWorker<DoubleDouble>::assemble(const FrontRows&, const ScalarBlock<DoubleDouble>&,
                                                    ThreadPool*);
-template void ScalarWorker<DoubleDouble>::add_matrix_entries(const RowsOfFront&,
+template void ScalarWorker<DoubleDouble>::add_matrix_entries(const FrontRows&,
                                                              const ScalarBlock<DoubleDouble>&);
 template void ScalarWorker<DoubleDouble>::add_contribution(Index, const ScalarBlock<DoubleDouble>&,
                                                            ThreadPool*);

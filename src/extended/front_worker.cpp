@@ -14,13 +14,6 @@ constexpr double kMostThreshold =
 /// second order.
 constexpr double kImageRoundings = 8;
 
-Status memory_limit(Offset reached) {
-  return Status::resource_limit("memory-cap",
-                                "the numeric phase needs more memory than allowed; it had reached " +
-                                    std::to_string(reached / (1024 * 1024)) + " MiB",
-                                "", "raise --memory-cap, or use fewer threads");
-}
-
 /// True when every column of every plane lands at or below the place it comes from and before what is still
 /// to be moved, so that the block can move over the children it has consumed without a copy aside.
 template <class Scalar>
@@ -61,27 +54,19 @@ void copy_columns(const ScalarBlock<Scalar>& from, Index first, const ScalarBloc
 
 }  // namespace
 
-bool ScalarRun::book(Offset change) {
-  const Offset now = bytes.fetch_add(change) + change;
-  Offset seen = peak_bytes.load();
-  while (now > seen && !peak_bytes.compare_exchange_weak(seen, now)) {
-  }
-  return change <= 0 || !options.memory_cap_bytes || now <= *options.memory_cap_bytes;
-}
-
 template <class Scalar>
 ScalarWorker<Scalar>::ScalarWorker(ScalarRun& run, Offset arena_doubles)
     : signs(static_cast<std::size_t>(run.analysis.tree.components)),
       run_(run),
       arena_(arena_doubles),
       local_of_(run.analysis.tree.rows) {
-  run_.book(local_of_.size() * Offset{sizeof(Index)});
+  run_.memory.book(local_of_.size() * Offset{sizeof(Index)});
 }
 
 template <class Scalar>
 ScalarWorker<Scalar>::~ScalarWorker() {
-  run_.book(-(booked_doubles_ + booked_scratch_) * Offset{sizeof(double)} -
-            local_of_.size() * Offset{sizeof(Index)});
+  run_.memory.book(-(booked_doubles_ + booked_scratch_) * Offset{sizeof(double)} -
+                   local_of_.size() * Offset{sizeof(Index)});
 }
 
 template <class Scalar>
@@ -91,25 +76,8 @@ Status ScalarWorker<Scalar>::book_arena() {
   if (change == 0 && scratch == 0) return {};
   booked_doubles_ += change;
   booked_scratch_ += scratch;
-  return run_.book((change + scratch) * Offset{sizeof(double)}) ? Status{} : memory_limit(run_.bytes.load());
-}
-
-template <class Scalar>
-RowsOfFront ScalarWorker<Scalar>::list_rows(Index front) {
-  const AssemblyTree& tree = run_.analysis.tree;
-  RowsOfFront rows{front, tree.pivots(front), 0, 0};
-  label_.clear();
-  for (Index k = tree.first_column[front]; k < tree.first_column[Offset{front} + 1]; ++k) label_.push_back(k);
-  for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
-    const auto& delayed = run_.waiting[static_cast<std::size_t>(child)].delayed;
-    label_.insert(label_.end(), delayed.begin(), delayed.end());
-  }
-  rows.candidates = static_cast<Index>(label_.size());
-  label_.insert(label_.end(), tree.rows_below.begin() + tree.row_start[front],
-                tree.rows_below.begin() + tree.row_start[Offset{front} + 1]);
-  rows.order = static_cast<Index>(label_.size());
-  for (Index i = 0; i < rows.order; ++i) local_of_[label_[static_cast<std::size_t>(i)]] = i;
-  return rows;
+  return run_.memory.book((change + scratch) * Offset{sizeof(double)}) ? Status{}
+                                                                       : run_.memory.limit_reached();
 }
 
 /// The children's blocks are in the front now. Returns the lowest place on this stack that is free again.
@@ -118,14 +86,14 @@ double* ScalarWorker<Scalar>::release_children(Index front, double* storage) {
   for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
     WaitingBlock& done = run_.waiting[static_cast<std::size_t>(child)];
     if (done.own.empty() && done.values != nullptr) storage = std::min(storage, done.values);
-    if (!done.own.empty()) run_.book(-done.own.size() * Offset{sizeof(double)});
+    if (!done.own.empty()) run_.memory.book(-done.own.size() * Offset{sizeof(double)});
     done = WaitingBlock{};
   }
   return storage;
 }
 
 template <class Scalar>
-ScalarElimination ScalarWorker<Scalar>::eliminate(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix,
+ScalarElimination ScalarWorker<Scalar>::eliminate(const FrontRows& rows, const ScalarBlock<Scalar>& matrix,
                                                   ThreadPool* team) {
   const auto candidates = static_cast<std::size_t>(rows.candidates);
   diagonal_.resize(candidates);
@@ -147,10 +115,11 @@ ScalarElimination ScalarWorker<Scalar>::eliminate(const RowsOfFront& rows, const
 
 template <class Scalar>
 Status ScalarWorker<Scalar>::process(Index front, ThreadPool* team) {
-  const RowsOfFront rows = list_rows(front);
+  const FrontRows rows = list_rows(run_.analysis.tree, front, run_.children[static_cast<std::size_t>(front)],
+                                   run_.waiting, label_, local_of_);
   const BlockLayout layout = front_layout(rows.order);
   double* storage = arena_.push(ScalarBlock<Scalar>::doubles(layout));
-  if (storage == nullptr) return memory_limit(run_.bytes.load());
+  if (storage == nullptr) return run_.memory.limit_reached();
   if (Status booked = book_arena(); !booked.ok()) return booked;
   const ScalarBlock<Scalar> matrix{layout, storage};
   assemble(rows, matrix, team);
@@ -172,7 +141,7 @@ Status ScalarWorker<Scalar>::process(Index front, ThreadPool* team) {
 }
 
 template <class Scalar>
-void ScalarWorker<Scalar>::bound_images(const RowsOfFront& rows, Index eliminated) {
+void ScalarWorker<Scalar>::bound_images(const FrontRows& rows, Index eliminated) {
   for (Index k = 0; k < rows.order; ++k) {
     const auto i = static_cast<std::size_t>(k);
     image_error_[i] += kUnit * (eliminated * std::fabs(image_[i]) +
@@ -202,7 +171,7 @@ void ScalarWorker<Scalar>::check_image(Index row, double bound) {
 }
 
 template <class Scalar>
-void ScalarWorker<Scalar>::count_pivots(const RowsOfFront& rows, const ScalarElimination& result) {
+void ScalarWorker<Scalar>::count_pivots(const FrontRows& rows, const ScalarElimination& result) {
   PivotSigns& total = signs[static_cast<std::size_t>(run_.analysis.tree.component[rows.front])];
   const double gamma = growth_factor<Scalar>(result.eliminated);
   // Underflow of products and quotients, seen through L and D of this front: error_bound.md, section 5.
@@ -235,8 +204,8 @@ void ScalarWorker<Scalar>::count_pivots(const RowsOfFront& rows, const ScalarEli
 }
 
 template <class Scalar>
-Status ScalarWorker<Scalar>::pack(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix,
-                                  Index eliminated, double* destination) {
+Status ScalarWorker<Scalar>::pack(const FrontRows& rows, const ScalarBlock<Scalar>& matrix, Index eliminated,
+                                  double* destination) {
   const Index order = rows.order - eliminated;
   arena_.pop_to(destination);
   if (order == 0) return {};
@@ -244,7 +213,7 @@ Status ScalarWorker<Scalar>::pack(const RowsOfFront& rows, const ScalarBlock<Sca
   out.order = order;
   out.delayed.assign(label_.begin() + eliminated, label_.begin() + rows.candidates);
   double* start = arena_.push(waiting_doubles(order));  // `destination` itself
-  if (start == nullptr) return memory_limit(run_.bytes.load());
+  if (start == nullptr) return run_.memory.limit_reached();
   out.place(start, kPlanes);
   const ScalarBlock<Scalar> to{contribution_layout(order), out.values};
   sums_.assign(static_cast<std::size_t>(order), 0);
@@ -275,7 +244,7 @@ Status ScalarWorker<Scalar>::detach(Index front) {
   if (block.values == nullptr) return {};
   const Offset doubles = waiting_doubles(block.order);
   block.own = Buffer<double>(doubles);
-  if (!run_.book(doubles * Offset{sizeof(double)})) return memory_limit(run_.bytes.load());
+  if (!run_.memory.book(doubles * Offset{sizeof(double)})) return run_.memory.limit_reached();
   std::memcpy(block.own.data(), block.values, static_cast<std::size_t>(doubles) * sizeof(double));
   block.place(block.own.data(), kPlanes);
   arena_.pop_to(arena_.top() - arena_.used());

@@ -7,6 +7,8 @@
 #include "base/arena.hpp"
 #include "extended/eliminate.hpp"
 #include "numeric/factorization.hpp"
+#include "numeric/front_rows.hpp"
+#include "numeric/memory_ledger.hpp"
 
 namespace stanchion {
 
@@ -50,17 +52,9 @@ struct ScalarRun {
   const FactorOptions& options;
   std::vector<std::vector<Index>> children;  ///< of every front, in processing order
   std::vector<WaitingBlock> waiting;         ///< per front, until its parent is assembled
+  MemoryLedger memory;
   ScalarProbe probe{};
-  std::atomic<Offset> bytes{0}, peak_bytes{0};
   std::atomic<bool> abandon{false};  ///< a worker stopped, broke down, failed or was cancelled
-
-  /// Books `change` bytes; false when the cap would be passed.
-  bool book(Offset change);
-};
-
-/// The rows of one front: its own pivots, then columns delayed by its children, then the rows below.
-struct RowsOfFront {
-  Index front = 0, own = 0, candidates = 0, order = 0;
 };
 
 template <class Scalar>
@@ -93,16 +87,15 @@ class ScalarWorker {
     return kPlanes * contribution_layout(order).size() + (3 + kPlanes) * Offset{order};
   }
 
-  RowsOfFront list_rows(Index front);
-  void assemble(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix, ThreadPool* team);
-  void add_matrix_entries(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix);
+  void assemble(const FrontRows& rows, const ScalarBlock<Scalar>& matrix, ThreadPool* team);
+  void add_matrix_entries(const FrontRows& rows, const ScalarBlock<Scalar>& matrix);
   void add_contribution(Index child, const ScalarBlock<Scalar>& matrix, ThreadPool* team);
   double* release_children(Index front, double* storage);
-  ScalarElimination eliminate(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix, ThreadPool* team);
-  void bound_images(const RowsOfFront& rows, Index eliminated);
+  ScalarElimination eliminate(const FrontRows& rows, const ScalarBlock<Scalar>& matrix, ThreadPool* team);
+  void bound_images(const FrontRows& rows, Index eliminated);
   void check_image(Index row, double bound);
-  void count_pivots(const RowsOfFront& rows, const ScalarElimination& result);
-  Status pack(const RowsOfFront& rows, const ScalarBlock<Scalar>& matrix, Index eliminated,
+  void count_pivots(const FrontRows& rows, const ScalarElimination& result);
+  Status pack(const FrontRows& rows, const ScalarBlock<Scalar>& matrix, Index eliminated,
               double* destination);
   Status book_arena();
 

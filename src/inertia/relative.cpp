@@ -190,8 +190,7 @@ class RelativeTest {
     }
     combine(v, input);
     const Norms v_norm = column_norms(v);
-    // Every term of a row of A_s y: its coefficient, product, addition; then the joining of the ranges.
-    const double product_error = 8 * static_cast<double>(data_.longest_row + 8) * kUnit * kUnit * data_.norm;
+    const double product_error = data_.product_error();
     double transposed = 0, residual = 0;
     for (std::size_t i = 0; i < kV; ++i) {
       const double h = gamma_ * m_norm_ * y_norm[i];
@@ -219,9 +218,8 @@ class RelativeTest {
     const AbsoluteNorm size = absolute_norm(*second_);
     double most = 0;
     for (std::size_t i = 0; i < kV; ++i) {
-      const double rho =
-          1.01 * kUnit * b_norm[i] + gamma_ * m_norm_ * u_norm[i] +
-          8 * static_cast<double>(size.longest_row + 8) * kUnit * kUnit * size.norm * y_norm[i] + 0x1p-500;
+      const double rho = 1.01 * kUnit * b_norm[i] + gamma_ * m_norm_ * u_norm[i] +
+                         size.product_error() * y_norm[i] + 0x1p-500;
       most = larger(most, u_norm[i] + beta_ * rho);
     }
     return most / (g - h_most_) * 1.001;

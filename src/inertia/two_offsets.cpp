@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstdio>
 
 #include "extended/factorize.hpp"
 #include "sparse/product.hpp"
@@ -18,6 +19,13 @@ constexpr double kMargin = 2.0;
 constexpr double kSharpenAbove = 8.0;
 constexpr int kMostRounds = 3;
 
+/// Three digits, not less than `value`.
+std::string rounded_up(double value) {
+  char text[32];
+  std::snprintf(text, sizeof(text), "%.2e", value * 1.005);
+  return text;
+}
+
 class OffsetScheme {
  public:
   OffsetScheme(const Analysis& analysis, const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool)
@@ -32,7 +40,7 @@ class OffsetScheme {
       certificate.level = Level::kProved;
       return found_;
     }
-    double offset = options_.resolution.value_or(std::max(norm, 0x1p-500) * first_guess());
+    double offset = options_.resolution.value_or(std::max(norm, 0x1p-500) * guess(options_.definite_first));
     if (!options_.resolution) offset = std::max(offset, kMargin * options_.data_error);
     if (options_.definite_first) {
       auto settled = try_definite(offset);
@@ -42,6 +50,7 @@ class OffsetScheme {
         give_up("the attempt without pivoting did not show the matrix definite");
         return found_;
       }
+      if (!options_.resolution) offset = std::max(offset, std::max(norm, 0x1p-500) * guess(false));
     }
     return both_offsets(offset);
   }
@@ -53,9 +62,9 @@ class OffsetScheme {
     Index negative = 0;
   };
 
-  double first_guess() const {
-    if (options_.extended) return options_.definite_first ? kExtendedDefiniteGuess : kExtendedGeneralGuess;
-    return options_.definite_first ? kDefiniteGuess : kGeneralGuess;
+  double guess(bool definite) const {
+    if (options_.extended) return definite ? kExtendedDefiniteGuess : kExtendedGeneralGuess;
+    return definite ? kDefiniteGuess : kGeneralGuess;
   }
 
   /// One factorization of A_s - offset I; its bound includes the data's own error.
@@ -146,7 +155,7 @@ class OffsetScheme {
       if (offset <= bound) {
         if (have_answer) return found_;
         if (options_.resolution) {
-          give_up("the resolution asked for is below the error bound " + std::to_string(bound) +
+          give_up("the resolution asked for is below the error bound " + rounded_up(bound) +
                   "; ask for at least twice that");
           return found_;
         }

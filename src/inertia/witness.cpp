@@ -91,8 +91,8 @@ std::optional<NegativeDirection> find_negative_direction(const Analysis& analysi
       x_square += x[i * kV + v] * x[i * kV + v];
       x_times_b += std::fabs(x[i * kV + v] * b[i * kV + v]);
     }
-    // b carries u |b| + 8 (q + 8) u^2 |A||x| (extended_times).
-    const double product_error = 8 * static_cast<double>(norm.longest_row + 8) * kUnit * kUnit * norm.norm * x_square;
+    // b carries u |b| besides (extended_times).
+    const double product_error = norm.product_error() * x_square;
     const double error = 1.01 * (form.error + kUnit * x_times_b + product_error) + 0x1p-900;
     if (!(form.value + error < 0)) continue;
     const double quotient = (form.value + error) / x_square;

@@ -20,14 +20,8 @@ struct BlockSolver::Scratch {
 };
 
 BlockSolver::BlockSolver(const Analysis& analysis, const Factor& factor, ThreadPool& pool)
-    : analysis_(analysis), factor_(factor), pool_(pool) {
-  const auto fronts = static_cast<std::size_t>(analysis.tree.fronts);
-  children_.resize(fronts);
-  passed_up_.resize(fronts);
-  for (Index f = 0; f < analysis.tree.fronts; ++f) {
-    const Index parent = analysis.tree.parent[f];
-    if (parent >= 0) children_[static_cast<std::size_t>(parent)].push_back(f);
-  }
+    : analysis_(analysis), factor_(factor), pool_(pool), children_(children_of(analysis.tree)) {
+  passed_up_.resize(children_.size());
   measure_paths();
 }
 

@@ -85,7 +85,8 @@ AbsoluteNorm absolute_norm(const ShiftedMatrix& matrix) {
     }
   }
   if (rows == 0) return {};
-  return {*std::max_element(sums.begin(), sums.end()) * 1.001, *std::max_element(terms.begin(), terms.end())};
+  return {*std::max_element(sums.begin(), sums.end()) * 1.001, *std::max_element(terms.begin(), terms.end()),
+          static_cast<Index>(matrix.coefficients.size())};
 }
 
 }  // namespace stanchion

@@ -1,6 +1,7 @@
 // The numeric phase: all pivots of a shifted matrix, and what they prove.
 #pragma once
 
+#include <algorithm>
 #include <cstdint>
 #include <optional>
 #include <vector>
@@ -55,6 +56,12 @@ struct Factor {
 /// Signs of the pivots of one connected part; exact for L D L^T (Sylvester).
 struct PivotSigns {
   Offset negative = 0, zero = 0, positive = 0;
+  PivotSigns& operator+=(const PivotSigns& more) {
+    negative += more.negative;
+    zero += more.zero;
+    positive += more.positive;
+    return *this;
+  }
 };
 
 struct Factorization {
@@ -69,6 +76,24 @@ struct Factorization {
   Offset peak_bytes = 0;    ///< of the numeric phase, as allocated
   double seconds = 0;
   std::optional<Factor> factor;
+
+  /// Adds what one worker counted (its members have the names used here) to the totals.
+  template <class Worker>
+  void collect(const Worker& worker) {
+    stopped = stopped || worker.stopped;
+    breakdown = breakdown || worker.breakdown;
+    if (worker.fault_row >= 0) {
+      fault_row = fault ? std::min(fault_row, worker.fault_row) : worker.fault_row;
+      fault = true;
+    }
+    delayed_pivots += worker.delayed_pivots;
+    two_by_two_pivots += worker.two_by_two_pivots;
+    if (!(worker.largest_row_error <= error_bound)) error_bound = worker.largest_row_error;
+    for (std::size_t c = 0; c < worker.signs.size(); ++c) {
+      component_signs[c] += worker.signs[c];
+      signs += worker.signs[c];
+    }
+  }
 };
 
 /// Factors `matrix` (in the elimination order of `analysis`). All threads of `pool` are used; the bits of the

@@ -14,22 +14,24 @@ namespace {
 /// Runs subtrees on single workers, then the shared fronts with everyone, and adds up what was counted.
 class Factorizer {
  public:
-  Factorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options, ThreadPool& pool)
-      : run_{analysis, matrix, options, {}, {}, nullptr, {}, {}, {}, {}}, pool_(pool) {
-    const auto fronts = static_cast<std::size_t>(analysis.tree.fronts);
-    run_.children.resize(fronts);
-    run_.waiting.resize(fronts);
-    for (Index f = 0; f < analysis.tree.fronts; ++f) {
-      const Index parent = analysis.tree.parent[f];
-      if (parent >= 0) run_.children[static_cast<std::size_t>(parent)].push_back(f);
-    }
+  Factorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
+             ThreadPool& pool)
+      : run_{analysis,
+             matrix,
+             options,
+             children_of(analysis.tree),
+             {},
+             nullptr,
+             MemoryLedger(options.memory_cap_bytes)},
+        pool_(pool) {
+    run_.waiting.resize(static_cast<std::size_t>(analysis.tree.fronts));
   }
 
   Result<Factorization> run() {
     Stopwatch watch;
     Factorization result;
     run_.probe = draw_fault_probe(run_.matrix, run_.options.seed);
-    run_.book(run_.probe.bytes());
+    run_.memory.book(run_.probe.bytes());
     if (run_.options.keep_factor) {
       result.factor.emplace();
       result.factor->rows = run_.analysis.tree.rows;
@@ -43,7 +45,7 @@ class Factorizer {
     if (!status_.ok()) return status_;
     // Sums of non-negative terms of any practical length are covered by one part in a thousand.
     result.error_bound *= 1.001;
-    result.peak_bytes = run_.peak_bytes;
+    result.peak_bytes = run_.memory.peak();
     result.seconds = watch.seconds();
     return result;
   }
@@ -139,28 +141,8 @@ class Factorizer {
 
   /// Adds a worker's counts to the result and lets it go.
   static void collect(Factorization& result, std::unique_ptr<FrontWorker>& worker) {
-    if (!worker) return;
-    result.stopped = result.stopped || worker->stopped;
-    result.breakdown = result.breakdown || worker->breakdown;
-    note_fault(result, worker->fault_row);
-    result.delayed_pivots += worker->delayed_pivots;
-    result.two_by_two_pivots += worker->two_by_two_pivots;
-    if (!(worker->largest_row_error <= result.error_bound)) result.error_bound = worker->largest_row_error;
-    for (std::size_t c = 0; c < worker->signs.size(); ++c) {
-      const PivotSigns& mine = worker->signs[c];
-      for (PivotSigns* total : {&result.component_signs[c], &result.signs}) {
-        total->negative += mine.negative;
-        total->zero += mine.zero;
-        total->positive += mine.positive;
-      }
-    }
+    if (worker) result.collect(*worker);
     worker.reset();
-  }
-
-  static void note_fault(Factorization& result, Index row) {
-    if (row < 0) return;
-    result.fault_row = result.fault ? std::min(result.fault_row, row) : row;
-    result.fault = true;
   }
 
   FactorRun run_;

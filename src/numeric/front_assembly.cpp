@@ -29,24 +29,6 @@ void scatter_columns(const Contribution& child, const Index* map, const BlockLow
 
 }  // namespace
 
-FrontRows FrontWorker::list_rows(Index front) {
-  const AssemblyTree& tree = run_.analysis.tree;
-  FrontRows rows{front, tree.pivots(front), 0, 0};
-  label_.clear();
-  for (Index k = tree.first_column[front]; k < tree.first_column[Offset{front} + 1]; ++k) label_.push_back(k);
-  for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
-    const auto& delayed = run_.waiting[static_cast<std::size_t>(child)].delayed;
-    label_.insert(label_.end(), delayed.begin(), delayed.end());
-  }
-  rows.candidates = static_cast<Index>(label_.size());
-  for (Offset k = tree.row_start[front]; k < tree.row_start[Offset{front} + 1]; ++k) {
-    label_.push_back(tree.rows_below[k]);
-  }
-  rows.order = static_cast<Index>(label_.size());
-  for (Index i = 0; i < rows.order; ++i) local_of_[label_[static_cast<std::size_t>(i)]] = i;
-  return rows;
-}
-
 void FrontWorker::add_matrix_entries(const FrontRows& rows, const BlockLower& matrix) {
   const MatrixFamily& family = *run_.matrix.family;
   const Index first = run_.analysis.tree.first_column[rows.front];
@@ -74,13 +56,8 @@ void FrontWorker::add_matrix_entries(const FrontRows& rows, const BlockLower& ma
 }
 
 void FrontWorker::add_contribution(const Contribution& child, const BlockLower& matrix, ThreadPool* team) {
-  const AssemblyTree& tree = run_.analysis.tree;
-  const Index front = static_cast<Index>(&child - run_.waiting.data());
-  map_.clear();
-  for (const Index position : child.delayed) map_.push_back(local_of_[position]);
-  for (Offset k = tree.row_start[front]; k < tree.row_start[Offset{front} + 1]; ++k) {
-    map_.push_back(local_of_[tree.rows_below[k]]);
-  }
+  map_child_rows(run_.analysis.tree, static_cast<Index>(&child - run_.waiting.data()), child.delayed,
+                 local_of_, map_);
   for (Index i = 0; i < child.order; ++i) {
     const auto to = static_cast<std::size_t>(map_[static_cast<std::size_t>(i)]);
     row_error_[to] += child.row_error[i];

@@ -16,13 +16,6 @@ constexpr Index kPivotRoundings = 40;
 /// Roundings of an image besides additions: D z (3), L times that (1), three additions of four products, a unit more.
 constexpr Index kImageRoundings = 8;
 
-Status memory_limit(Offset reached) {
-  return Status::resource_limit(
-      "memory-cap", "the numeric phase needs more memory than allowed; it had reached " +
-                        std::to_string(reached / (1024 * 1024)) + " MiB",
-      "", "raise --memory-cap, or use fewer threads");
-}
-
 /// True when every column of the block lands at or below the place it comes from, so that it can move over the
 /// children it has consumed, column by column, without a copy aside.
 bool moves_down(const BlockLower& from, Index first, const BlockLower& to) {
@@ -55,24 +48,17 @@ void Contribution::place(double* doubles) {
   image_error = image + order;
 }
 
-bool FactorRun::book(Offset change) {
-  const Offset now = bytes.fetch_add(change) + change;
-  Offset seen = peak_bytes.load();
-  while (now > seen && !peak_bytes.compare_exchange_weak(seen, now)) {
-  }
-  return change <= 0 || !options.memory_cap_bytes || now <= *options.memory_cap_bytes;
-}
-
 FrontWorker::FrontWorker(FactorRun& run, Offset arena_doubles)
     : signs(static_cast<std::size_t>(run.analysis.tree.components)),
       run_(run),
       arena_(arena_doubles),
       local_of_(run.analysis.tree.rows) {
-  run_.book(local_of_.size() * Offset{sizeof(Index)});
+  run_.memory.book(local_of_.size() * Offset{sizeof(Index)});
 }
 
 FrontWorker::~FrontWorker() {
-  run_.book(-(booked_doubles_ + booked_scratch_) * Offset{sizeof(double)} - local_of_.size() * Offset{sizeof(Index)});
+  run_.memory.book(-(booked_doubles_ + booked_scratch_) * Offset{sizeof(double)} -
+                   local_of_.size() * Offset{sizeof(Index)});
 }
 
 Status FrontWorker::book_arena() {
@@ -81,14 +67,16 @@ Status FrontWorker::book_arena() {
   if (change == 0 && scratch == 0) return {};
   booked_doubles_ += change;
   booked_scratch_ += scratch;
-  return run_.book((change + scratch) * Offset{sizeof(double)}) ? Status{} : memory_limit(run_.bytes.load());
+  return run_.memory.book((change + scratch) * Offset{sizeof(double)}) ? Status{}
+                                                                       : run_.memory.limit_reached();
 }
 
 Status FrontWorker::process(Index front, ThreadPool* team) {
-  const FrontRows rows = list_rows(front);
+  const FrontRows rows = list_rows(run_.analysis.tree, front, run_.children[static_cast<std::size_t>(front)],
+                                   run_.waiting, label_, local_of_);
   const BlockLayout layout = front_layout(rows.order);
   double* storage = arena_.push(layout.size());
-  if (storage == nullptr) return memory_limit(run_.bytes.load());
+  if (storage == nullptr) return run_.memory.limit_reached();
   if (Status booked = book_arena(); !booked.ok()) return booked;
   const BlockLower matrix{layout, storage};
   if (Status assembled = assemble(rows, matrix, team); !assembled.ok()) return assembled;
@@ -98,7 +86,7 @@ Status FrontWorker::process(Index front, ThreadPool* team) {
   for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
     Contribution& done = run_.waiting[static_cast<std::size_t>(child)];
     if (done.own.empty() && done.values != nullptr) base = std::min(base, done.values);
-    if (!done.own.empty()) run_.book(-done.own.size() * Offset{sizeof(double)});
+    if (!done.own.empty()) run_.memory.book(-done.own.size() * Offset{sizeof(double)});
     done = Contribution{};
   }
   const auto candidates = static_cast<std::size_t>(rows.candidates);
@@ -184,8 +172,8 @@ Status FrontWorker::keep_panel(const FrontRows& rows, const BlockLower& matrix, 
   kept.order = rows.order;
   const Offset entries = Offset{rows.order} * eliminated;
   const bool single = run_.options.store_single;
-  if (!run_.book(entries * (single ? Offset{sizeof(float)} : Offset{sizeof(double)}))) {
-    return memory_limit(run_.bytes.load());
+  if (!run_.memory.book(entries * (single ? Offset{sizeof(float)} : Offset{sizeof(double)}))) {
+    return run_.memory.limit_reached();
   }
   if (single) {
     kept.lower_single = Buffer<float>(entries);
@@ -254,7 +242,7 @@ Status FrontWorker::detach(Index front) {
   if (block.values == nullptr) return {};
   const Offset doubles = contribution_doubles(block.order);
   block.own = Buffer<double>(doubles);
-  if (!run_.book(doubles * Offset{sizeof(double)})) return memory_limit(run_.bytes.load());
+  if (!run_.memory.book(doubles * Offset{sizeof(double)})) return run_.memory.limit_reached();
   std::memcpy(block.own.data(), block.values, static_cast<std::size_t>(doubles) * sizeof(double));
   block.place(block.own.data());
   arena_.pop_to(arena_.top() - arena_.used());

@@ -8,6 +8,8 @@
 #include "dense/eliminate.hpp"
 #include "numeric/factorization.hpp"
 #include "numeric/fault_probe.hpp"
+#include "numeric/front_rows.hpp"
+#include "numeric/memory_ledger.hpp"
 
 namespace stanchion {
 
@@ -34,21 +36,10 @@ struct FactorRun {
   std::vector<std::vector<Index>> children;  ///< of every front, in processing order
   std::vector<Contribution> waiting;         ///< per front, until its parent is assembled
   Factor* factor = nullptr;                  ///< null: discard
-  std::atomic<Offset> bytes{0}, peak_bytes{0};
+  MemoryLedger memory;
   std::atomic<double> flops_done{0};
   std::atomic<bool> abandon{false};          ///< a worker stopped, broke down, failed or was cancelled
   FaultProbe probe{};
-
-  /// Books `change` bytes; false when the cap would be passed.
-  bool book(Offset change);
-};
-
-/// The rows of one front and where each comes from.
-struct FrontRows {
-  Index front = 0;
-  Index own = 0;         ///< pivots of this front's own
-  Index candidates = 0;  ///< own + delayed from the children
-  Index order = 0;
 };
 
 class FrontWorker {
@@ -74,7 +65,6 @@ class FrontWorker {
   Index fault_row = -1;  ///< first in elimination order; negative: none
 
  private:
-  FrontRows list_rows(Index front);
   Status assemble(const FrontRows& rows, const BlockLower& matrix, ThreadPool* team);
   void add_matrix_entries(const FrontRows& rows, const BlockLower& matrix);
   void add_contribution(const Contribution& child, const BlockLower& matrix, ThreadPool* team);

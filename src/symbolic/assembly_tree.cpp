@@ -145,4 +145,12 @@ AssemblyTree build_assembly_tree(const Elimination& elimination, const Supernode
   return tree;
 }
 
+std::vector<std::vector<Index>> children_of(const AssemblyTree& tree) {
+  std::vector<std::vector<Index>> children(static_cast<std::size_t>(tree.fronts));
+  for (Index f = 0; f < tree.fronts; ++f) {
+    if (tree.parent[f] >= 0) children[static_cast<std::size_t>(tree.parent[f])].push_back(f);
+  }
+  return children;
+}
+
 }  // namespace stanchion

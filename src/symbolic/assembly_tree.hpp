@@ -28,6 +28,9 @@ struct AssemblyTree {
   Index order(Index front) const { return pivots(front) + below(front); }
 };
 
+/// The children of every front, in processing order.
+std::vector<std::vector<Index>> children_of(const AssemblyTree& tree);
+
 /// Cost: linear in the row lists and the graph, plus sorting the lists.
 AssemblyTree build_assembly_tree(const Elimination& elimination, const SupernodeTree& supernodes);
 
