@@ -40,7 +40,7 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
   const std::vector<Index> multipliers = model.multipliers, original = model.original;
   ConstraintRank rank;
   if (!multipliers.empty()) {
-    auto certified_rank = certify_constraint_rank(model.stiffness, multipliers, request, context, pool, outcome);
+    auto certified_rank = certify_constraint_rank(model, request, context, pool, outcome);
     if (!certified_rank.ok()) return certified_rank.status();
     rank = std::move(*certified_rank);
   }

@@ -115,20 +115,29 @@ Inertia on_constraints(const Inertia& a, Index q, Index p) {
 
 }  // namespace
 
-Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness, const std::vector<Index>& multipliers,
-                                               const Request& request, const RunContext& context, ThreadPool& pool,
+Result<ConstraintRank> certify_constraint_rank(const ModelInput& model, const Request& request,
+                                               const RunContext& context, ThreadPool& pool,
                                                Outcome& outcome) {
+  const std::vector<Index>& multipliers = model.multipliers;
   ConstraintRank rank;
   rank.multipliers = static_cast<Index>(multipliers.size());
-  const ConstraintRows constraints = extract_rows(stiffness, multipliers);
+  const ConstraintRows constraints = extract_rows(model.stiffness, multipliers);
   rank.bordered = constraints.bordered;
-  if (!rank.bordered) return rank;
+  bool summed = false;
+  for (const SymmetricMatrix& added : model.added) {
+    const ConstraintRows more = extract_rows(added, multipliers);
+    rank.bordered = rank.bordered && more.bordered;
+    for (const ConstraintRow& row : more.rows) summed = summed || !row.empty();
+  }
+  rank.most = rank.multipliers;
+  if (!rank.bordered || summed) return rank;
   const std::vector<char> repeated = repeated_rows(constraints.rows);
   for (std::size_t m = 0; m < multipliers.size(); ++m) {
     if (repeated[m]) rank.repeated.push_back(multipliers[m]);
   }
   const Index distinct = rank.multipliers - static_cast<Index>(rank.repeated.size());
   rank.backing.level = Level::kProved;
+  rank.most = distinct;
   if (distinct == 0) return rank;
   ModelInput bordered;
   bordered.stiffness = bordered_identity(constraints.rows, repeated);
@@ -141,11 +150,8 @@ Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness,
   outcome.timings.factor += found->seconds;
   outcome.risk = own.risk;
   outcome.events = std::move(own.events);
-  if (found->certificate.level == Level::kNone) {
-    rank.least = 0;
-    rank.most = distinct;
-    return rank;
-  }
+  rank.backing.level = found->certificate.level;
+  if (found->certificate.level == Level::kNone) return rank;
   rank.backing = backing_of(found->certificate);
   // n-([I B^T; B 0]) = rank(B): every zero direction may be one more.
   rank.least = found->inertia.negative;

@@ -16,11 +16,12 @@ struct ConstraintRank {
   bool bordered = true;           ///< false: multipliers act on each other, the theory below does not apply
 };
 
-/// Certifies the rank of the constraint rows. Exact multiples of earlier rows are found and set aside first, for no
-/// factorization in floating point can prove a matrix rank deficient. `stiffness` is the whole matrix A.
-Result<ConstraintRank> certify_constraint_rank(const SymmetricMatrix& stiffness, const std::vector<Index>& multipliers,
-                                               const Request& request, const RunContext& context, ThreadPool& pool,
-                                               Outcome& outcome);
+/// Certifies the rank of the constraint rows. Exact multiples of earlier rows are found and set aside first,
+/// for no factorization in floating point can prove a matrix rank deficient. A is the stiffness of `model`
+/// with what is added; where something is added to the constraint rows themselves their sum is not formed and
+/// the rank is not known.
+Result<ConstraintRank> certify_constraint_rank(const ModelInput& model, const Request& request,
+                                               const RunContext& context, ThreadPool& pool, Outcome& outcome);
 
 /// In(A) = In(Z^T K Z) + (p, p, q - p), p = rank(B), Z a basis of null(B) (Gould, Math. Program. 32 (1985);
 /// Haynsworth, Linear Algebra Appl. 1 (1968)). With p known only as a range, so is the answer. `original`:

@@ -179,9 +179,7 @@ Result<CertifiedInertia> PencilCounter::certify_apart(ModelInput part) {
   Outcome scratch = outcome_;  // the document's digests key the random vectors; its risk goes on
   scratch.work.factorizations = 0;
   scratch.warnings.clear();
-  Request plain = request_;
-  if (part.added.empty()) plain.input.added.clear();
-  auto pencil = PreparedPencil::make(part, false, plain, context_, pool_, scratch);
+  auto pencil = PreparedPencil::make(part, false, request_, context_, pool_, scratch);
   if (!pencil.ok()) return pencil.status();
   auto found = pencil->certify(0, true, data_error(*pencil, 0), pool_, scratch);
   if (!found.ok()) return found.status();

@@ -129,7 +129,9 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   if (model.second) members.push_back(&*model.second);
   if (unit) members.push_back(&*unit);
   pencil.has_second_ = model.second || unit;
-  for (const AddedMatrix& added : request.input.added) pencil.added_factors_.push_back(added.factor);
+  for (std::size_t k = 0; k < model.added.size(); ++k) {
+    pencil.added_factors_.push_back(request.input.added[k].factor);  // a part of the model may have none
+  }
 
   pencil.original_ = model.original;
   pencil.file_rows_ = outcome.rows_analysed + outcome.rows_struck;

@@ -107,6 +107,44 @@ TEST(Constraints, AnExactMultipleIsRedundantASumIsOnlyARange) {
   EXPECT_GE(sum.check->constrained->negative_range->second, 0);
 }
 
+TEST(Constraints, WhatIsAddedToTheStructureLeavesTheRankAlone) {
+  ModelFiles files;
+  Request request;
+  // K = diag(-1, 1, 1) and -3 added to its last dof; x2 = 0 twice: rank 1, x1 and x3 stay, both negative (by
+  // hand).
+  request.input.stiffness =
+      files.matrix("A.mtx", from_triplets(5, {{0, 0, -1}, {1, 1, 1}, {2, 2, 1}, {3, 1, 1}, {4, 1, 1}}));
+  request.input.added = {{files.matrix("soil.mtx", from_triplets(5, {{2, 2, 6}})), -0.5}};
+  request.input.multipliers = files.text("multipliers.txt", "4\n5\n");
+  const ConstrainedOutcome on = *answer(run_check(request, {})).check->constrained;
+  EXPECT_EQ(on.rank, 1);
+  ASSERT_TRUE(on.inertia);
+  EXPECT_EQ(on.inertia->negative, 2);
+  EXPECT_EQ(on.inertia->zero, 0);
+}
+
+TEST(Constraints, WhatIsAddedToTheConstraintsThemselvesLeavesOnlyARange) {
+  ModelFiles files;
+  Request request;
+  // Both constraints say x2 = 0 in A; what is added makes the second x1 + x2 = 0.
+  request.input.stiffness =
+      files.matrix("A.mtx", from_triplets(5, {{0, 0, 1}, {1, 1, 1}, {2, 2, 1}, {3, 1, 1}, {4, 1, 1}}));
+  request.input.added = {{files.matrix("more.mtx", from_triplets(5, {{4, 0, 2}})), 0.5}};
+  request.input.multipliers = files.text("multipliers.txt", "4\n5\n");
+  const ConstrainedOutcome regular = *answer(run_check(request, {})).check->constrained;
+  EXPECT_TRUE(regular.redundant_equations.empty());
+  EXPECT_EQ(regular.rank, 2) << "A without zero directions shows it";
+  // Added with the other sign of what is there: the second constraint is gone, and only A could tell.
+  request.input.added = {{files.matrix("less.mtx", from_triplets(5, {{4, 1, 1}})), -1}};
+  const ConstrainedOutcome gone = *answer(run_check(request, {})).check->constrained;
+  EXPECT_FALSE(gone.rank);
+  EXPECT_EQ(gone.negative_range, (std::pair<Index, Index>{0, 0}));
+  // Between multipliers: not a structure on constraints at all.
+  request.input.added = {{files.matrix("between.mtx", from_triplets(5, {{4, 3, 1}})), 1}};
+  const Outcome coupled = answer(run_check(request, {}));
+  EXPECT_TRUE(warned(coupled, "multipliers-coupled"));
+}
+
 TEST(Constraints, MultipliersThatActOnEachOtherAreNotJudged) {
   const Outcome outcome =
       check_with_multipliers(from_triplets(3, {{0, 0, 2}, {1, 0, 1}, {2, 0, 1}, {2, 1, 1}}), 1);
