@@ -8,6 +8,16 @@
 namespace stanchion {
 namespace {
 
+/// The number of values never falls as the shift grows, so certified counts that do are a fault.
+Status never_falls(const PencilCounter& counter, const std::vector<ShiftCount>& counts) {
+  Staircase staircase;
+  for (const ShiftCount& count : counts) {
+    if (const auto fact = counter.fact(count)) staircase.add(*fact);
+  }
+  if (staircase.contradictions().empty()) return {};
+  return Status::internal("certified counts contradict each other: a fault of the machine, its BLAS, or the program");
+}
+
 Result<Outcome> count_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
                             Outcome outcome) {
   outcome.count.emplace();
@@ -19,6 +29,7 @@ Result<Outcome> count_model(ModelInput model, const Request& request, const RunC
     if (!count.ok()) return count.status();
     outcome.count->counts.push_back(std::move(*count));
   }
+  if (Status sound = never_falls(counter, outcome.count->counts); !sound.ok()) return sound;
   if (request.pencil == Pencil::kGeometric && counter.two_sided()) {
     std::vector<std::string>& sentences = outcome.count->sentences;
     const auto [low, high] = std::minmax_element(request.shifts.begin(), request.shifts.end());
