@@ -1,9 +1,10 @@
-// The one pool of threads: fork-join loops over numbered pieces of work.
+// The one pool of threads: fork-join loops over numbered pieces of work, and loops inside pieces that idle workers join.
 #pragma once
 
 #include <atomic>
 #include <condition_variable>
 #include <functional>
+#include <memory>
 #include <mutex>
 #include <thread>
 #include <vector>
@@ -13,7 +14,7 @@
 namespace stanchion {
 
 /// Fixed set of workers. The calling thread is worker 0 and takes part in every loop.
-/// Not reentrant: `run` must not be called from inside a piece of work.
+/// Not reentrant: inside a piece of work only `share` may be called, and not inside a piece of that.
 class ThreadPool {
  public:
   /// `threads` >= 1; `threads` - 1 are started.
@@ -29,9 +30,32 @@ class ThreadPool {
   /// the others have finished. Which worker gets a piece is not reproducible: results must not depend on it.
   void run(Offset pieces, const std::function<void(Offset piece, int worker)>& work);
 
+  /// The same, but workers that find no piece left take part in what the others share, until all are done. Meanwhile
+  /// they poll, then doze: for pieces that run long.
+  void run_sharing(Offset pieces, const std::function<void(Offset piece, int worker)>& work);
+
+  /// Calls `work(piece)` for each piece in [0, pieces) and returns when all are done, exceptions as in `run`. Inside a
+  /// piece of run_sharing the workers that are idle there take part; inside one of run nobody does; outside, everyone.
+  void share(Offset pieces, const std::function<void(Offset piece)>& work);
+
  private:
+  /// What one worker shares while it is inside a piece of its own.
+  struct SharedLoop {
+    std::atomic<bool> open{false};
+    std::atomic<int> helpers{0};
+    std::atomic<Offset> next{0};
+    Offset pieces = 0;
+    const std::function<void(Offset)>* work = nullptr;
+    std::mutex mutex;
+    std::exception_ptr failure;
+
+    void drain();
+  };
+
+  void start(Offset pieces, const std::function<void(Offset, int)>& work, bool sharing);
   void worker_loop(int worker);
   void drain(int worker);
+  void assist(int worker);
 
   std::vector<std::thread> workers_;
   std::mutex mutex_;
@@ -42,6 +66,9 @@ class ThreadPool {
   Offset pieces_ = 0;
   std::atomic<int> busy_{0};
   const std::function<void(Offset, int)>* work_ = nullptr;
+  bool sharing_ = false;
+  std::atomic<Offset> unfinished_{0};          ///< pieces of a sharing loop that have not ended
+  std::unique_ptr<SharedLoop[]> shared_loops_;  ///< one a worker
   std::exception_ptr failure_;
 };
 

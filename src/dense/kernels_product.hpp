@@ -71,6 +71,10 @@ void subtract_part(const Sums<V>& sums, Index rows, Index first_column, Index co
 template <Index V>
 void subtract_strip(const double* a, const double* b, Index depth, Index rows, Index first_column, Index columns,
                     double* c, long leading) {
+  // C is on its way while the sums are formed.
+  for (Index j = 0; j < columns; ++j) {
+    for (Index v = 0; v < V * kLanes; v += 8) __builtin_prefetch(c + v + j * leading, 1);
+  }
   Sums<V> sums;
   sums.form(a, kRowStrip, b, depth);
   if (rows == V * kLanes && first_column <= 0 && columns == kColumnStrip) {

@@ -10,14 +10,14 @@
 
 namespace stanchion {
 
-/// Runs `work(piece)` for every piece: on all threads of `team`, or here in order when it is null. The pieces, and
+/// Runs `work(piece)` for every piece: shared with the threads of `team`, or here in order when it is null. The pieces, and
 /// so the arithmetic, are the same either way.
 template <class Work>
 void for_each_piece(ThreadPool* team, Offset pieces, const Work& work) {
   if (team == nullptr || pieces <= 1) {
     for (Offset piece = 0; piece < pieces; ++piece) work(piece);
   } else {
-    team->run(pieces, [&](Offset piece, int) { work(piece); });
+    team->share(pieces, [&](Offset piece) { work(piece); });
   }
 }
 

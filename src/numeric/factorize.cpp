@@ -93,18 +93,21 @@ class Factorizer {
     for (const Wave& wave : schedule.waves) {
       run_subtrees(wave);
       if (!status_.ok() || run_.abandon) return;
-      for (auto& worker : workers_) collect(result, worker);  // their stacks make room for the shared one
+      if (!schedule.keep_stacks) {
+        for (auto& worker : workers_) collect(result, worker);  // their stacks make room for the shared one
+      }
       for (std::size_t k = wave.first_shared; k < wave.end_shared; ++k) {
         if (!shared_worker_ && !start(shared_worker_, schedule.shared_arena_doubles)) return;
         if (!step(*shared_worker_, schedule.shared_fronts[k], &pool_)) return;
       }
-      if (shared_worker_ && &wave != &schedule.waves.back()) {
+      if (shared_worker_ && !schedule.keep_stacks && &wave != &schedule.waves.back()) {
         if (Status status = shared_worker_->trim(); !status.ok()) return fail(std::move(status));
       }
     }
   }
 
-  /// The subtrees of one wave, the largest first, each on whichever worker is free.
+  /// The subtrees of one wave, the largest first, each on whichever worker is free; who finds none left takes part in
+  /// the larger fronts of the others.
   void run_subtrees(const Wave& wave) {
     const Schedule& schedule = run_.analysis.schedule;
     std::vector<std::size_t> by_size(wave.end_subtree - wave.first_subtree);
@@ -112,13 +115,14 @@ class Factorizer {
     std::stable_sort(by_size.begin(), by_size.end(), [&](std::size_t a, std::size_t b) {
       return schedule.subtrees[a].flops > schedule.subtrees[b].flops;
     });
-    pool_.run(static_cast<Offset>(by_size.size()), [&](Offset piece, int worker) {
+    pool_.run_sharing(static_cast<Offset>(by_size.size()), [&](Offset piece, int worker) {
       if (run_.abandon) return;
       auto& mine = workers_[static_cast<std::size_t>(worker)];
       const Subtree& subtree = schedule.subtrees[by_size[static_cast<std::size_t>(piece)]];
       if (!mine && !start(mine, schedule.worker_arena_doubles)) return;
       for (Index f = subtree.first; f < subtree.end; ++f) {
-        if (!step(*mine, f, nullptr)) return;
+        const bool large = front_flops(run_.analysis.tree.order(f), run_.analysis.tree.pivots(f)) > kShareFlops;
+        if (!step(*mine, f, large ? &pool_ : nullptr)) return;
       }
       try {
         if (Status status = mine->detach(subtree.end - 1); !status.ok()) fail(std::move(status));

@@ -11,16 +11,22 @@ namespace {
 constexpr double kUnit = 0x1p-53;
 constexpr Index kScatterColumns = 64;  ///< columns of a contribution block added as one piece
 
-/// Adds columns [begin, end) of the child to the front through `map` (child row -> front row).
-void scatter_columns(const Contribution& child, const Index* map, const BlockLower& front, Index begin, Index end) {
+/// Adds columns [begin, end) of the child to the front through `map` (child row -> front row). `run_end[i]`: end of the
+/// rows from i on that stay next to each other.
+void scatter_columns(const Contribution& child, const Index* map, const Index* run_end, const BlockLower& front,
+                     Index begin, Index end) {
   const BlockLower from{contribution_layout(child.order), child.values};
   const bool ascending = child.delayed.empty();
   for (Index j = begin; j < end; ++j) {
     const double* source = from.column(j, j) - j;
     const Index to = map[j];
     if (ascending) {
-      double* target = front.column(to, to) - to;
-      for (Index i = j; i < child.order; ++i) target[map[i]] += source[i];
+      double* column = front.column(to, to) - to;
+      for (Index i = j; i < child.order;) {
+        const Index stop = run_end[i];
+        double* target = column + (map[i] - i);
+        for (; i < stop; ++i) target[i] += source[i];
+      }
     } else {
       for (Index i = j; i < child.order; ++i) front.at(std::max(map[i], to), std::min(map[i], to)) += source[i];
     }
@@ -66,10 +72,16 @@ void FrontWorker::add_contribution(const Contribution& child, const BlockLower& 
     image_[to] += child.image[i];
     image_error_[to] += child.image_error[i] + kUnit * std::fabs(image_[to]);
   }
+  run_end_.resize(map_.size());
+  for (Index i = child.order; i-- > 0;) {
+    const auto at = static_cast<std::size_t>(i);
+    const bool joined = i + 1 < child.order && map_[at + 1] == map_[at] + 1;
+    run_end_[at] = joined ? run_end_[at + 1] : i + 1;
+  }
   const Index pieces = (child.order + kScatterColumns - 1) / kScatterColumns;
   for_each_piece(team, pieces, [&](Offset piece) {
     const Index begin = static_cast<Index>(piece) * kScatterColumns;
-    scatter_columns(child, map_.data(), matrix, begin, std::min(begin + kScatterColumns, child.order));
+    scatter_columns(child, map_.data(), run_end_.data(), matrix, begin, std::min(begin + kScatterColumns, child.order));
   });
 }
 

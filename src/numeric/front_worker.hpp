@@ -87,7 +87,7 @@ class FrontWorker {
   std::vector<double> sign_, image_, image_error_;
   std::vector<Index> addends_;           ///< contribution blocks that reach a row
   std::vector<PivotKind> kind_;
-  std::vector<Index> map_;
+  std::vector<Index> map_, run_end_;     ///< child row -> row of the current front, and where runs of neighbours end
 };
 
 }  // namespace stanchion

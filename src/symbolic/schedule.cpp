@@ -10,8 +10,6 @@
 namespace stanchion {
 namespace {
 
-/// A front below this many operations is not worth sharing among workers.
-constexpr double kShareFlops = 2e7;
 /// Subtrees per worker aimed at, so that the last ones to finish leave little idle time.
 constexpr double kSubtreesPerWorker = 8;
 
@@ -96,21 +94,21 @@ Offset worker_doubles(const Schedule& schedule) {
 }
 
 /// Bound on everything alive at once: the workers' stacks while a wave's subtrees run, waiting results, and the shared
-/// stack, which keeps its highest mark of a wave until the wave ends.
-Offset peak_of_waves(const AssemblyTree& tree, const Schedule& schedule, const std::vector<Wave>& waves) {
+/// stack, which keeps its highest mark of a wave until the wave ends. `keep`: all stacks stay as they are to the end.
+Offset peak_of_waves(const AssemblyTree& tree, const Schedule& schedule, const std::vector<Wave>& waves, bool keep) {
   const Waiting waiting = waiting_for_fronts(tree, schedule);
-  const Offset workers = worker_doubles(schedule);
+  const Offset workers = worker_doubles(schedule), kept = keep ? workers : 0;
   Offset results = 0, top = 0, touched = 0, peak = 0;
   for (const Wave& wave : waves) {
     for (std::size_t k = wave.first_subtree; k < wave.end_subtree; ++k) {
       results += schedule.subtrees[k].result_doubles;
     }
-    touched = top;
+    if (!keep) touched = top;
     peak = std::max(peak, touched + results + workers);
     for (std::size_t k = wave.first_shared; k < wave.end_shared; ++k) {
       const Index f = schedule.shared_fronts[k];
       touched = std::max(touched, top + front_doubles(tree, f));
-      peak = std::max(peak, touched + results + schedule.panel_doubles);
+      peak = std::max(peak, touched + results + schedule.panel_doubles + kept);
       results -= waiting.from_subtrees[static_cast<std::size_t>(f)];
       top += result_doubles(tree, f) - waiting.on_stack[static_cast<std::size_t>(f)];
     }
@@ -137,19 +135,26 @@ std::vector<Wave> processing_waves(const Schedule& schedule) {
   return waves;
 }
 
-/// Memory below which balance matters more, in doubles, and the share of it that waves must save.
+/// Memory below which time matters more, in doubles; the share of it that waves must save; and how much more of it
+/// stacks may take that are kept, since pages given back are cleared again when they return.
 constexpr Offset kSmallPeak = Offset{100} << 17;
-constexpr double kWorthSaving = 0.85;
+constexpr double kWorthSaving = 0.85, kWorthKeeping = 1.25;
 
 void choose_waves(const AssemblyTree& tree, Schedule& schedule) {
   schedule.waves = {{0, schedule.subtrees.size(), 0, schedule.shared_fronts.size()}};
-  schedule.peak_doubles = peak_of_waves(tree, schedule, schedule.waves);
-  if (schedule.shared_fronts.empty() || schedule.peak_doubles < kSmallPeak) return;
-  std::vector<Wave> many = processing_waves(schedule);
-  const Offset peak = peak_of_waves(tree, schedule, many);
-  if (static_cast<double>(peak) > kWorthSaving * static_cast<double>(schedule.peak_doubles)) return;
-  schedule.waves = std::move(many);
-  schedule.peak_doubles = peak;
+  schedule.peak_doubles = peak_of_waves(tree, schedule, schedule.waves, false);
+  if (!schedule.shared_fronts.empty() && schedule.peak_doubles >= kSmallPeak) {
+    std::vector<Wave> many = processing_waves(schedule);
+    const Offset peak = peak_of_waves(tree, schedule, many, false);
+    if (static_cast<double>(peak) <= kWorthSaving * static_cast<double>(schedule.peak_doubles)) {
+      schedule.waves = std::move(many);
+      schedule.peak_doubles = peak;
+    }
+  }
+  const Offset kept = peak_of_waves(tree, schedule, schedule.waves, true);
+  schedule.keep_stacks = kept < kSmallPeak ||
+                         static_cast<double>(kept) <= kWorthKeeping * static_cast<double>(schedule.peak_doubles);
+  if (schedule.keep_stacks) schedule.peak_doubles = kept;
 }
 
 }  // namespace

@@ -7,6 +7,9 @@
 
 namespace stanchion {
 
+/// A front below this many operations is not worth sharing among workers.
+constexpr double kShareFlops = 2e7;
+
 /// Half-open range of fronts: a subtree is contiguous in processing order, its root is the last.
 struct Subtree {
   Index first = 0, end = 0;
@@ -26,6 +29,7 @@ struct Schedule {
   std::vector<Subtree> subtrees;    ///< in processing order
   std::vector<Index> shared_fronts; ///< the rest, in processing order, each worked on by all
   std::vector<Wave> waves;          ///< in the order they run; one wave balances best, many need less memory
+  bool keep_stacks = false;         ///< workers keep their memory from wave to wave: it need not be cleared again
   Offset worker_arena_doubles = 0;  ///< largest of the subtrees
   Offset shared_arena_doubles = 0;  ///< stack of the shared fronts
   Offset panel_doubles = 0;         ///< scratch of the largest front

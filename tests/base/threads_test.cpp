@@ -71,6 +71,67 @@ TEST(ThreadPool, OfSeveralExceptionsOneArrivesAndThePoolStaysUsable) {
   EXPECT_EQ(runs, 40);
 }
 
+TEST(ThreadPool, SharedPiecesInsidePiecesRunExactlyOnce) {
+  for (int threads = 1; threads <= 5; ++threads) {
+    ThreadPool pool(threads);
+    for (const Offset outer : {1, 2, 3, 9}) {
+      std::vector<std::atomic<int>> runs(static_cast<std::size_t>(outer) * 40);
+      pool.run_sharing(outer, [&](Offset piece, int) {
+        for (int round = 0; round < 50; ++round) {
+          pool.share(40, [&](Offset part) { ++runs[static_cast<std::size_t>(piece * 40 + part)]; });
+        }
+      });
+      for (const auto& count : runs) ASSERT_EQ(count, 50) << threads << " threads, " << outer << " pieces";
+    }
+  }
+}
+
+TEST(ThreadPool, AnIdleWorkerTakesPartInWhatAnotherShares) {
+  ThreadPool pool(2);
+  std::atomic<int> met{0};
+  // Each of the two parts waits for the other: only two workers at once can end them.
+  pool.run_sharing(1, [&](Offset, int) {
+    pool.share(2, [&](Offset) {
+      ++met;
+      while (met.load() < 2) std::this_thread::yield();
+    });
+  });
+  EXPECT_EQ(met, 2);
+}
+
+TEST(ThreadPool, WhatSharedPiecesWroteIsSeenByTheirOwner) {
+  ThreadPool pool(3);
+  std::vector<Offset> values(64);
+  pool.run_sharing(1, [&](Offset, int) {
+    for (Offset round = 1; round <= 2000; ++round) {
+      pool.share(64, [&](Offset part) { values[static_cast<std::size_t>(part)] = part * round; });
+      ASSERT_EQ(values[63], 63 * round);
+    }
+  });
+}
+
+TEST(ThreadPool, AnExceptionInASharedPieceReachesItsOwner) {
+  ThreadPool pool(3);
+  std::atomic<int> caught{0};
+  pool.run_sharing(6, [&](Offset, int) {
+    try {
+      pool.share(30, [](Offset part) {
+        if (part == 11) throw std::runtime_error("part 11");
+      });
+    } catch (const std::runtime_error&) {
+      ++caught;
+    }
+  });
+  EXPECT_EQ(caught, 6);
+}
+
+TEST(ThreadPool, SharingOutsideAnyPieceUsesEveryone) {
+  ThreadPool pool(4);
+  std::atomic<Offset> sum{0};
+  pool.share(100, [&](Offset part) { sum += part; });
+  EXPECT_EQ(sum, 4950);
+}
+
 TEST(ThreadPool, ManyPoolsComeAndGo) {
   Offset total = 0;
   for (int round = 0; round < 200; ++round) {
