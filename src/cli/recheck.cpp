@@ -117,7 +117,7 @@ Result<std::vector<ClaimComparison>> compare_with_second_look(const Outcome& cla
 /// What the certificate says of distances without an eigenvalue is looked into by counts at their ends.
 Result<std::vector<ClaimComparison>> compare_counts(const Outcome& claimed, const Outcome& found,
                                                     Request request, const RunContext& context) {
-  request.shifts = radius_ends(claimed, found);
+  request.shifts = interval_ends(claimed, found);
   if (request.shifts.empty()) return compare_claims(claimed, found);
   const auto ends = run_count(request, context);
   if (!ends.ok()) return ends.status();

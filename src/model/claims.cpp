@@ -8,7 +8,7 @@
 
 #include "model/claim_consistency.hpp"
 #include "model/claim_facts.hpp"
-#include "model/claim_radius.hpp"
+#include "model/claim_intervals.hpp"
 #include "model/names.hpp"
 
 namespace stanchion {
@@ -201,15 +201,13 @@ std::vector<ClaimComparison> compare_sentences(const CountOutcome& claimed, cons
 
 }  // namespace
 
-std::vector<double> radius_ends(const Outcome& claimed, const Outcome& found) {
+std::vector<double> interval_ends(const Outcome& claimed, const Outcome& found) {
   std::vector<double> ends;
   if (!claimed.count || !found.count) return ends;
   const std::size_t many = std::min(claimed.count->counts.size(), found.count->counts.size());
   for (std::size_t k = 0; k < many; ++k) {
-    const ShiftCount& count = claimed.count->counts[k];
-    if (!needs_ends(count, found.count->counts[k])) continue;
-    const double inside = *count.no_eigenvalue_within * (1 - 0x1p-40);
-    ends.insert(ends.end(), {count.shift - inside, count.shift + inside});
+    const auto interval = open_interval(claimed.count->counts[k], found.count->counts[k]);
+    if (interval) ends.insert(ends.end(), {interval->first, interval->second});
   }
   return ends;
 }
@@ -232,9 +230,9 @@ std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcom
       const ShiftCount& new_count = found.count->counts[k];
       std::vector<ClaimComparison> parts{
           compare_count(old_count, new_count, found.rows_analysed, same_scaling)};
-      const bool looked = needs_ends(old_count, new_count) && at_ends.size() >= 2;
-      parts.push_back(compare_radius(old_count, new_count, looked ? &at_ends[0] : nullptr,
-                                     looked ? &at_ends[1] : nullptr));
+      const bool looked = open_interval(old_count, new_count).has_value() && at_ends.size() >= 2;
+      parts.push_back(compare_intervals(old_count, new_count, looked ? &at_ends[0] : nullptr,
+                                        looked ? &at_ends[1] : nullptr));
       if (looked) at_ends = at_ends.subspan(2);
       ClaimComparison comparison = worst_of(parts);
       comparison.shift = old_count.shift;

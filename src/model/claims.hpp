@@ -30,14 +30,14 @@ struct ClaimComparison {
 
 /// Compares the answers of `claimed` and `found`, which are to one question (both check, or both count with
 /// the same shifts), and what the risk of `claimed` must be. `at_ends`: counts by the second path at
-/// radius_ends(claimed, found), in that order; without them only distances that `found` itself gives are
+/// interval_ends(claimed, found), in that order; without them only distances that `found` itself gives are
 /// repeated.
 std::vector<ClaimComparison> compare_claims(const Outcome& claimed, const Outcome& found,
                                             std::span<const ShiftCount> at_ends = {});
 
-/// Shifts at which counts can show what `claimed` says of distances without an eigenvalue and `found` does
-/// not: the two ends of each such interval, a little inside.
-std::vector<double> radius_ends(const Outcome& claimed, const Outcome& found);
+/// Shifts at which counts can show what `claimed` says of intervals around its shifts and `found` does not:
+/// the two ends of each.
+std::vector<double> interval_ends(const Outcome& claimed, const Outcome& found);
 
 /// The worst of them; kNotRepeated when there is none.
 Agreement worst(const std::vector<ClaimComparison>& comparisons);

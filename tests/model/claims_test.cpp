@@ -279,9 +279,9 @@ Outcome count_with_radius(double radius) {
 TEST(Claims, DistancesWithoutAnEigenvalueAreLookedInto) {
   const Outcome claimed = count_with_radius(0.5);
   EXPECT_EQ(between(claimed, count_with_radius(0.5)), Agreement::kAgreed);
-  EXPECT_TRUE(radius_ends(claimed, count_with_radius(0.6)).empty());
+  EXPECT_TRUE(interval_ends(claimed, count_with_radius(0.6)).empty());
   EXPECT_EQ(between(claimed, count_with_radius(0.1)), Agreement::kNotRepeated);
-  const auto ends = radius_ends(claimed, count_of(3, 3));
+  const auto ends = interval_ends(claimed, count_of(3, 3));
   ASSERT_EQ(ends.size(), 2U);
   EXPECT_NEAR(ends[0], 2.0, 1e-9);
   EXPECT_NEAR(ends[1], 3.0, 1e-9);
@@ -317,6 +317,39 @@ TEST(Claims, DistancesWithoutAnEigenvalueAreLookedInto) {
   const char* directions = "negative directions of K + f G at the shift";
   EXPECT_EQ(with_ends({3, 3}, {3, 3}, directions), Agreement::kNotRepeated);
   EXPECT_EQ(with_ends({4, 4}, {3, 3}, directions), Agreement::kContradicted);
+}
+
+/// A count by offsets that leaves one eigenvalue open in a band.
+Outcome count_with_band(double half_width, double reach = 1e-12) {
+  Outcome outcome = count_of(2, 3);
+  ShiftCount& count = outcome.count->counts[0];
+  count.certificate = check_of(2, 1, reach, reach / 10).check->certificate;
+  count.method = "offsets";
+  count.holds_outside = {count.shift - half_width, count.shift + half_width};
+  return outcome;
+}
+
+TEST(Claims, BandsFollowFromTheirResolutionOrAreLookedInto) {
+  EXPECT_EQ(between(count_with_band(1e-9), count_with_band(1.2e-9)), Agreement::kAgreed);
+  EXPECT_EQ(between(count_with_band(1e-9), count_with_band(1e-10, 1e-13)), Agreement::kAgreed);
+  const Outcome narrow = count_with_band(1e-10), found = count_with_band(1e-9);
+  EXPECT_EQ(between(narrow, found), Agreement::kNotRepeated);
+  const auto ends = interval_ends(narrow, found);
+  ASSERT_EQ(ends.size(), 2U);
+  const auto with_ends = [&](std::pair<Index, Index> low, std::pair<Index, Index> high) {
+    std::vector<ShiftCount> counts;
+    for (const auto& [range, shift] : {std::pair{low, ends[0]}, std::pair{high, ends[1]}}) {
+      counts.push_back(count_of(range.first, range.second).count->counts[0]);
+      counts.back().shift = shift;
+    }
+    return worst(compare_claims(narrow, found, counts));
+  };
+  EXPECT_EQ(with_ends({2, 2}, {3, 3}), Agreement::kAgreed);
+  EXPECT_EQ(with_ends({2, 2}, {2, 2}), Agreement::kContradicted);
+  EXPECT_EQ(with_ends({2, 3}, {2, 3}), Agreement::kNotRepeated);
+  Outcome elsewhere = count_with_band(1e-9);
+  elsewhere.count->counts[0].holds_outside = {2.6, 2.7};
+  EXPECT_EQ(between(elsewhere, found), Agreement::kNotRepeated) << "the band must hold the shift";
 }
 
 }  // namespace

@@ -116,6 +116,15 @@ class AgreedTest(CertificateTest):
         claim, = self.recheck(0)["claims"]
         self.assertEqual((claim["claimed"], claim["found"]), ("1 to 2", "1 to 2"))
 
+    def test_the_band_of_a_range_of_counts(self):
+        self.certify(3, "count", self.matrix("D.mtx", 3, diagonal([1, 2, 3])), "--at", "2")
+        self.recheck(0)
+        # Narrower than the resolution gives, but true: counts at its ends show the eigenvalue 2 inside.
+        self.tamper(lambda document: document["claims"][0].update(holds_outside=[2 - 1e-15, 2 + 1e-15]))
+        self.recheck(0)
+        self.tamper(lambda document: document["claims"][0].update(holds_outside=[1.5, 1.75]))
+        self.recheck(3)
+
     def test_constraints(self):
         path = self.matrix("A.mtx", 3, {(0, 0): -1.0, (1, 1): 1.0, (2, 1): 1.0})
         (self.folder / "m.csv").write_text("equation\n3\n")
