@@ -1,6 +1,7 @@
 #include "order/quotient_graph.hpp"
 
 #include <algorithm>
+#include <bit>
 #include <cstdint>
 #include <numeric>
 #include <vector>
@@ -52,27 +53,31 @@ Grouping group_by_neighbourhood(const SymmetricMatrix& pattern) {
   for (Index i = 0; i < n; ++i) hash[static_cast<std::size_t>(i)] = mix(static_cast<std::uint64_t>(i));
   const std::vector<std::uint64_t> own = hash;
   for (Index j = 0; j < n; ++j) {
+    std::uint64_t sum = 0;
     for (Offset k = pattern.column_start[j]; k < pattern.column_start[Offset{j} + 1]; ++k) {
       const Index i = pattern.row[k];
       if (i == j) continue;
       hash[static_cast<std::size_t>(i)] += own[static_cast<std::size_t>(j)];
-      hash[static_cast<std::size_t>(j)] += own[static_cast<std::size_t>(i)];
+      sum += own[static_cast<std::size_t>(i)];
+    }
+    hash[static_cast<std::size_t>(j)] += sum;
+  }
+  // Equal hashes share a slot of an open table, at most half full; groups are numbered by first appearance.
+  Grouping grouping{0, Buffer<Index>(n)};
+  const std::size_t slots = std::bit_ceil(2 * static_cast<std::size_t>(n) + 1);
+  std::vector<Index> first(slots, -1);
+  for (Index i = 0; i < n; ++i) {
+    const std::uint64_t mine = hash[static_cast<std::size_t>(i)];
+    std::size_t slot = mine & (slots - 1);
+    while (first[slot] >= 0 && hash[static_cast<std::size_t>(first[slot])] != mine) slot = (slot + 1) & (slots - 1);
+    if (first[slot] < 0) {
+      first[slot] = i;
+      grouping.group_of[i] = grouping.groups++;
+    } else {
+      grouping.group_of[i] = grouping.group_of[first[slot]];
     }
   }
-  std::vector<Index> order(static_cast<std::size_t>(n));
-  std::iota(order.begin(), order.end(), 0);
-  std::sort(order.begin(), order.end(), [&](Index a, Index b) {
-    const auto ha = hash[static_cast<std::size_t>(a)], hb = hash[static_cast<std::size_t>(b)];
-    return ha != hb ? ha < hb : a < b;
-  });
-  std::vector<Index> label(static_cast<std::size_t>(n));
-  Index labels = 0;
-  for (std::size_t k = 0; k < order.size(); ++k) {
-    const bool same = k > 0 && hash[static_cast<std::size_t>(order[k])] == hash[static_cast<std::size_t>(order[k - 1])];
-    if (!same) ++labels;
-    label[static_cast<std::size_t>(order[k])] = labels - 1;
-  }
-  return renumber(n, label, labels);
+  return grouping;
 }
 
 Grouping group_by_node(Index rows, std::span<const Index> node_of) {

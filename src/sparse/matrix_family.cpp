@@ -25,9 +25,40 @@ void merge_column(std::span<const SymmetricMatrix* const> members, Index j, std:
   }
 }
 
+/// One matrix whose columns have their diagonals already, or get them: columns go over whole.
+MatrixFamily family_of(const SymmetricMatrix& matrix) {
+  const Index n = matrix.rows;
+  const auto starts_with_diagonal = [&](Index j) {
+    const Offset begin = matrix.column_start[j];
+    return begin < matrix.column_start[Offset{j} + 1] && matrix.row[begin] == j;
+  };
+  MatrixFamily family;
+  family.rows = n;
+  family.column_start = Buffer<Offset>(Offset{n} + 1);
+  family.column_start[0] = 0;
+  for (Index j = 0; j < n; ++j) {
+    const Offset entries = matrix.column_start[Offset{j} + 1] - matrix.column_start[j];
+    family.column_start[Offset{j} + 1] = family.column_start[j] + entries + (starts_with_diagonal(j) ? 0 : 1);
+  }
+  family.row = Buffer<Index>(family.column_start[n]);
+  family.values.emplace_back(family.column_start[n]);
+  for (Index j = 0; j < n; ++j) {
+    const Offset begin = matrix.column_start[j], count = matrix.column_start[Offset{j} + 1] - begin;
+    Offset place = family.column_start[j];
+    if (!starts_with_diagonal(j)) {
+      family.row[place] = j;
+      family.values[0][place++] = 0;
+    }
+    std::copy_n(matrix.row.data() + begin, count, family.row.data() + place);
+    std::copy_n(matrix.value.data() + begin, count, family.values[0].data() + place);
+  }
+  return family;
+}
+
 }  // namespace
 
 MatrixFamily unite(std::span<const SymmetricMatrix* const> members) {
+  if (members.size() == 1) return family_of(*members[0]);
   const Index n = members[0]->rows;
   MatrixFamily family;
   family.rows = n;

@@ -33,14 +33,15 @@ std::vector<double> diagonal_of(const MatrixFamily& family, std::span<const doub
 
 bool diagonal_dominates(const MatrixFamily& family, std::span<const double> coefficients,
                         const std::vector<double>& diagonal) {
-  for (const double d : diagonal) {
-    if (!(d > 0)) return false;
+  std::vector<double> root(diagonal.size());
+  for (std::size_t i = 0; i < root.size(); ++i) {
+    if (!(diagonal[i] > 0)) return false;
+    root[i] = std::sqrt(diagonal[i]);
   }
   for (Index j = 0; j < family.rows; ++j) {
-    const double root = std::sqrt(diagonal[static_cast<std::size_t>(j)]) * 1.000001;
+    const double own = root[static_cast<std::size_t>(j)] * 1.000001;
     for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-      const double other = std::sqrt(diagonal[static_cast<std::size_t>(family.row[k])]);
-      if (magnitude(family, coefficients, k) > root * other) return false;
+      if (magnitude(family, coefficients, k) > own * root[static_cast<std::size_t>(family.row[k])]) return false;
     }
   }
   return true;
