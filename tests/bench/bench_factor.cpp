@@ -5,7 +5,7 @@
 #include "base/clock.hpp"
 #include "bench/bench_record.hpp"
 #include "bench/process_usage.hpp"
-#include "inertia/two_offsets.hpp"
+#include "inertia/certify.hpp"
 #include "sparse/scaling.hpp"
 #include "symbolic/analysis.hpp"
 
@@ -43,16 +43,24 @@ void factor_once(const Analysis& analysis, const ShiftedMatrix& matrix, const Be
   record.numeric_peak_bytes = f.peak_bytes;
 }
 
-/// The proved answer, with as many factorizations as it takes.
+/// The certified answer, with as many factorizations as it takes and by the method the program would choose.
 void certify(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchArguments& arguments,
              ThreadPool& pool, BenchRecord& record) {
-  OffsetOptions options;
-  options.definite_first = arguments.definite;
-  const CertifiedInertia found = take(certify_by_offsets(analysis, matrix, options, pool));
+  constexpr double kRisk = 1e-6;                    // what the program allows a document by default
+  constexpr Offset kMostFactor = Offset{8} << 30;
+  RiskBudget risk(kRisk);
+  CertifyOptions options;
+  options.offsets.definite_first = arguments.definite;
+  options.risk = &risk;
+  options.most_factor_bytes = kMostFactor;
+  const CertifiedInertia found = take(certify_inertia(analysis, matrix, options, pool));
   record.factorizations = found.factorizations;
   record.delayed_pivots = found.delayed_pivots;
   record.negative = found.inertia.negative;
-  record.valid = found.certificate.level == Level::kProved && found.inertia.zero == 0;
+  record.level = found.certificate.level == Level::kProved ? "proved" : "statistical";
+  if (found.certificate.level == Level::kNone) record.level = "none";
+  record.method = found.certificate.method.value_or("");
+  record.valid = found.certificate.level != Level::kNone && found.inertia.zero == 0;
   record.definite = found.inertia.positive == analysis.tree.rows;
   record.error_bound = found.certificate.error_bound;
   record.numeric_peak_bytes = found.peak_bytes;

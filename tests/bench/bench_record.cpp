@@ -27,6 +27,8 @@ void print_record(const BenchArguments& arguments, int repetition, const BenchRe
   line["order_seconds"] = record.order_seconds;
   line["analyse_seconds"] = record.analyse_seconds;
   line["certified"] = arguments.certified;
+  line["level"] = record.level;
+  line["method"] = record.method;
   line["factorizations"] = record.factorizations;
   line["numeric_seconds"] = record.numeric_seconds;
   line["numeric_cpu_seconds"] = record.numeric_cpu_seconds;

@@ -16,6 +16,7 @@ struct BenchRecord {
   double form_seconds = 0;   ///< merging, permuting, scaling, where the program does it apart
   double order_seconds = 0;  ///< 0 where the program does not tell it from the analysis
   double analyse_seconds = 0;
+  std::string level = "none", method;  ///< of the certificate; the peers and single factorizations have none
   int factorizations = 1;  ///< that numeric_seconds covers
   double numeric_seconds = 0;
   double numeric_cpu_seconds = 0;  ///< user + system, all threads
