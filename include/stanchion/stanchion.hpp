@@ -27,6 +27,8 @@ struct Listener {
   std::function<bool(const char* stage, double fraction)> progress;
   /// One line a stage.
   std::function<void(const std::string& line)> log;
+  /// Every count of a sweep as it comes, in no order; never from two threads at once.
+  std::function<void(const ShiftCount& count)> on_count;
 };
 
 /// Is the stiffness matrix positive definite; if not, its inertia at the resolution. The outcome's `check` is
@@ -42,6 +44,19 @@ Result<Outcome> locate(const Request& request, const Listener& listener = {});
 /// Counts at every shift of `request`, in the order asked; `pencil` must agree with the matrices named. The
 /// outcome's `count` is set. Errors as above. Cost: one to six factorizations a shift, one analysis for all.
 Result<Outcome> count(const Request& request, const Listener& listener = {});
+
+/// The staircase of counts over `request.sweep`, side by side where memory allows. The outcome's `count` and `sweep` are
+/// set. Errors as above. Cost: as count, for every shift of the grid and those that refinement adds.
+Result<Outcome> sweep(const Request& request, const Listener& listener = {});
+
+/// The values of `request.bracket`, each in an interval with multiplicity and proof, and how far the list is complete. The
+/// outcome's `bracket` is set. Errors as above. Cost: three to six factorizations and some twenty passes over one that is
+/// kept; by counts alone 30 to 40 factorizations a value.
+Result<Outcome> bracket(const Request& request, const Listener& listener = {});
+
+/// Is the list of `request.audit` complete in its range, and is everything in it real? The outcome's `audit` is set.
+/// Errors as above, and those of reading the list. Cost: as bracket.
+Result<Outcome> audit(const Request& request, const Listener& listener = {});
 
 /// Factor size, flops, memory and likely time; nothing is factored. The outcome's `forecast` is set.
 Result<Outcome> forecast(const Request& request, const Listener& listener = {});

@@ -18,6 +18,7 @@ Result<Outcome> ask(Question question, Engine engine, const Request& request, co
     RunContext context;
     context.cancel = &token;
     context.log = listener.log;
+    context.on_count = listener.on_count;
     if (listener.progress) {
       context.progress = [&](const char* stage, double fraction) {
         if (!listener.progress(stage, fraction)) token.cancel();
@@ -44,6 +45,18 @@ Result<Outcome> count(const Request& request, const Listener& listener) {
 
 Result<Outcome> locate(const Request& request, const Listener& listener) {
   return ask(Question::kLocate, run_locate, request, listener);
+}
+
+Result<Outcome> sweep(const Request& request, const Listener& listener) {
+  return ask(Question::kSweep, run_sweep, request, listener);
+}
+
+Result<Outcome> bracket(const Request& request, const Listener& listener) {
+  return ask(Question::kBracket, run_bracket, request, listener);
+}
+
+Result<Outcome> audit(const Request& request, const Listener& listener) {
+  return ask(Question::kAudit, run_audit, request, listener);
 }
 
 Result<Outcome> forecast(const Request& request, const Listener& listener) {

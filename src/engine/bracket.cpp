@@ -209,7 +209,10 @@ class Bracketer {
   void say_number_found(Index fewer) {
     if (fewer == 0) return;
     counter_.warn("fewer-than-asked", std::to_string(fewer) + " of the values asked do not exist in the range that was searched" +
-                                          (answer_.complete ? ", up to " + number(std::fabs(answer_.complete->to)) : ""));
+                                          (answer_.complete ? ", up to " + number(std::max(std::fabs(answer_.complete->to),
+                                                                             std::isfinite(answer_.complete->from)
+                                                                                 ? std::fabs(answer_.complete->from)
+                                                                                 : 0.0)) : ""));
   }
 
   /// K is not definite (said already): the inertia at the ends is all there is.

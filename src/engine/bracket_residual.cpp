@@ -449,8 +449,13 @@ class ResidualBrackets {
       const double last = std::fabs(found.list[many - 1].ritz.value), next = std::fabs(found.list[many].ritz.value);
       theta = next + 0.5 * (last - next);
     }
-    const double end = round_between(shift_of(theta * (1 - 0.2 * gap_of(found, many, theta))),
-                                     shift_of(theta * (1 + 0.2 * gap_of(found, many, theta))));
+    double end = round_between(shift_of(theta * (1 - 0.2 * gap_of(found, many, theta))),
+                               shift_of(theta * (1 + 0.2 * gap_of(found, many, theta))));
+    if (many < wanted) {
+      auto reached = look_further(end, side, static_cast<Offset>(many));
+      if (!reached.ok()) return reached.status();
+      if (!*reached) return false;  // there are more, too far out for this space
+    }
     std::optional<CountFact> low, high;
     const CountFact zero{0, 0, 0, std::nullopt, counter_.base().level, counter_.base().failure_probability.value_or(0)};
     if (side != Side::kNegative) {
@@ -470,6 +475,26 @@ class ResidualBrackets {
     // Without a lower end: nothing lies below -tau, for K + tau M is definite and M semidefinite.
     const double from = low ? low->shift : 0 - tau_;
     return settle(pairs, low, *high, from, high->shift);
+  }
+
+  /// Moves `end` outwards in a few long strides, as long as the counts there find no more than `many`; false when they do.
+  Result<bool> look_further(double& end, Side side, Offset many) {
+    constexpr int kStrides = 4;
+    constexpr double kStride = 32;
+    const double signs[2] = {1, -1};
+    for (int k = 0; k < kStrides; ++k) {
+      Offset inside = 0;
+      for (const double sign : signs) {
+        if (side != Side::kBoth && (sign > 0) != (side == Side::kPositive)) continue;
+        auto fact = count_at(sign * end * kStride);
+        if (!fact.ok()) return fact.status();
+        if (!*fact || !(*fact)->exact()) return true;  // as far as counts can tell
+        inside += std::abs((*fact)->least);
+      }
+      if (inside > many) return false;
+      end *= kStride;
+    }
+    return true;
   }
 
   /// Half the free space around `theta`, relative to it.

@@ -98,7 +98,9 @@ void write_sweep(Page& page, const Outcome& outcome) {
   const bool all = std::all_of(answer.counts.begin(), answer.counts.end(), [](const ShiftCount& count) {
     return count.below.has_value() && count.level != Level::kNone;
   });
-  page.sentence(fmt::format("{} counted at {}, {}.", what(answer), counted(static_cast<Offset>(answer.counts.size()), "shift"),
+  std::string who = what(answer);
+  who[0] = static_cast<char>(who[0] - 'a' + 'A');
+  page.sentence(fmt::format("{} counted at {}, {}.", who, counted(static_cast<Offset>(answer.counts.size()), "shift"),
                             all ? "every count certified" : "not every count certified"));
   write_jumps(page, outcome);
   for (const std::string& sentence : answer.sentences) page.sentence(sentence);

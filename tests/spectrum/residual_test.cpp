@@ -1,0 +1,137 @@
+#include "spectrum/residual_intervals.hpp"
+
+#include "spectrum/block_lanczos.hpp"
+#include "spectrum/block_rows.hpp"
+#include "spectrum/dense_pencil.hpp"
+
+namespace stanchion {
+namespace {
+
+using namespace test;
+
+/// Approximate vectors of all values: the whole space, disturbed by `noise`.
+std::vector<ResidualPair> pairs_with_noise(const KnownPencil& known, PencilParts& parts, DefiniteBase& base, double noise) {
+  const BlockRows rows(parts.second());
+  std::vector<double> work(static_cast<std::size_t>(rows.rows()) * kBlockVectors);
+  BlockLanczos lanczos(
+      [&](double* block) {
+        base.transposed_solve(block);
+        rows.times(block, work.data(), parts.pool);
+        std::copy(work.begin(), work.end(), block);
+        base.solve(block);
+      },
+      rows.rows(), 48, 3, parts.pool);
+  const std::vector<RitzValue> all = lanczos.ritz_values();
+  EXPECT_EQ(all.size(), known.thetas.size());
+  std::mt19937 random(5);
+  std::normal_distribution<double> gauss;
+  std::vector<ResidualPair> pairs;
+  for (std::size_t first = 0; first < all.size(); first += kBlockVectors) {
+    const std::vector<RitzValue> chosen(all.begin() + static_cast<long>(first),
+                                        all.begin() + static_cast<long>(std::min(first + kBlockVectors, all.size())));
+    std::vector<double> block = lanczos.vectors(chosen);
+    for (double& entry : block) entry += noise * gauss(random);
+    for (ResidualPair& pair : residual_pairs(base, parts.second(), block, static_cast<Index>(chosen.size()))) {
+      pairs.push_back(std::move(pair));
+    }
+  }
+  return pairs;
+}
+
+/// Each interval must hold at least as many exact eigenvalues as it has vectors, and all intervals together all of them.
+void hold(const KnownPencil& known, const std::vector<EigenvalueGroup>& groups) {
+  std::size_t vectors = 0;
+  for (std::size_t k = 0; k < groups.size(); ++k) {
+    const auto inside = std::count_if(known.thetas.begin(), known.thetas.end(), [&](double theta) {
+      return theta >= groups[k].low && theta <= groups[k].high;
+    });
+    EXPECT_GE(static_cast<std::size_t>(inside), groups[k].pairs.size());
+    if (k > 0) {
+      EXPECT_LT(groups[k - 1].high, groups[k].low);
+    }
+    vectors += groups[k].pairs.size();
+  }
+  EXPECT_EQ(vectors, known.thetas.size());
+}
+
+/// Values on a grid of 2^-12, some repeated, some a grid step apart, of both signs: exact by construction.
+std::vector<double> grid_values(std::size_t n, unsigned seed) {
+  std::mt19937 random(seed);
+  std::vector<double> values;
+  while (values.size() < n) {
+    const double value = (static_cast<int>(random() % 8192) - 4096) * 0x1p-12;
+    values.push_back(value);
+    if (random() % 4 == 0) values.push_back(value);
+    if (random() % 4 == 0) values.push_back(value + 0x1p-12);
+    if (random() % 6 == 0) values.insert(values.end(), 4, value);
+  }
+  return values;
+}
+
+TEST(ResidualIntervals, HoldExactEigenvaluesWithMultiplicity) {
+  for (unsigned seed = 1; seed <= 12; ++seed) {
+    const KnownPencil known = known_pencil(grid_values(60, seed), seed);
+    PencilParts parts(known);
+    DefiniteBase base = parts.make_base();
+    for (const double noise : {0.0, 1e-12, 1e-8, 1e-5, 1e-3, 1e-2}) {
+      SCOPED_TRACE(testing::Message() << "seed " << seed << ", noise " << noise);
+      hold(known, disjoint_groups(base, pairs_with_noise(known, parts, base, noise)));
+    }
+  }
+}
+
+TEST(ResidualIntervals, AreTightWhereVectorsAreGood) {
+  const KnownPencil known = known_pencil({1, 0.5, 0.5, -0.25, 0.125, 0.0625, 2, 3}, 4);
+  PencilParts parts(known);
+  DefiniteBase base = parts.make_base();
+  const auto groups = disjoint_groups(base, pairs_with_noise(known, parts, base, 0));
+  ASSERT_EQ(groups.size(), 7u);
+  for (const EigenvalueGroup& group : groups) EXPECT_LT(group.high - group.low, 1e-12);
+}
+
+TEST(ResidualIntervals, RefiningMakesThemTighter) {
+  const KnownPencil known = known_pencil({4, 2, 2, 1, 0.5, 0.25, 0.125, 0.0625, 0.03125, 0.015625}, 9);
+  PencilParts parts(known);
+  DefiniteBase base = parts.make_base();
+  std::vector<ResidualPair> rough = pairs_with_noise(known, parts, base, 1e-6);
+  double before = 0, after = 0;
+  for (const ResidualPair& pair : rough) before = std::max(before, pair.radius);
+  const auto better = refined_coordinates(base, parts.second(), rough);
+  ASSERT_EQ(better.size(), rough.size());
+  for (const auto& coordinates : better) {
+    std::vector<double> block(coordinates.size() * kBlockVectors, 0.0);
+    for (std::size_t i = 0; i < coordinates.size(); ++i) block[i * kBlockVectors] = coordinates[i];
+    after = std::max(after, residual_pairs(base, parts.second(), block, 1).front().radius);
+  }
+  EXPECT_LT(after, before / 100);
+}
+
+TEST(DefiniteBase, IsNoneForAMatrixThatIsNotDefinite) {
+  const KnownPencil known = known_pencil({1, 2, 3, 4}, 2);
+  PencilParts parts(known);
+  ShiftedMatrix matrix{&parts.family, {-1, 0}, &parts.scale, 0};
+  RiskBudget budget(1e-6);
+  DefiniteBaseOptions options;
+  options.risk = &budget;
+  auto base = DefiniteBase::make(parts.analysis, matrix, options, parts.pool);
+  ASSERT_TRUE(base.ok());
+  EXPECT_FALSE(*base);
+}
+
+TEST(DefiniteBase, AProvedBoundIsUsedWhereItIsCloseEnough) {
+  const KnownPencil known = known_pencil({1, 2, 3, 4, 5, 6}, 2);
+  PencilParts parts(known);
+  DefiniteBaseOptions options;
+  options.smallest_eigenvalue = 0.2;  // T = I + N with ||N|| <= 1/2, so B = T T^T >= 1/4
+  auto base = DefiniteBase::make(parts.analysis, parts.base(), options, parts.pool);
+  ASSERT_TRUE(base.ok() && *base);
+  EXPECT_EQ((*base)->certificate().level, Level::kProved);
+  EXPECT_LT((*base)->relative(), 1e-12);
+  options.smallest_eigenvalue = 0;
+  auto none = DefiniteBase::make(parts.analysis, parts.base(), options, parts.pool);
+  ASSERT_TRUE(none.ok());
+  EXPECT_FALSE(*none);
+}
+
+}  // namespace
+}  // namespace stanchion
