@@ -252,6 +252,8 @@ Result<Outcome> audit_model(ModelInput model, const Request& request, const RunC
   Audit audit(counter, request, context, pool, outcome);
   if (Status status = audit.run(*list); !status.ok()) return status;
   if (Status status = audit.find_missing(); !status.ok()) return status;
+  within_document(outcome.audit->range.failure_probability, outcome);
+  for (CriticalValue& value : outcome.audit->missing) within_document(value.failure_probability, outcome);
   return outcome;
 }
 

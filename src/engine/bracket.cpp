@@ -44,6 +44,10 @@ class Bracketer {
     if (Status status = look_at_other_side(range); !status.ok()) return status;
     if (!asked_.first) answer_.none_below = none_in_range();
     if (asked_.safety) say_safety(range);
+    for (CriticalValue& value : answer_.critical) within_document(value.failure_probability, outcome_);
+    for (auto* counted : {&answer_.complete, &answer_.other_side}) {
+      if (*counted) within_document((*counted)->failure_probability, outcome_);
+    }
     return {};
   }
 

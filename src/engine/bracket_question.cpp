@@ -1,6 +1,12 @@
 #include "engine/bracket_question.hpp"
 
+#include <algorithm>
+
 namespace stanchion {
+
+void within_document(std::optional<double>& failure_probability, const Outcome& outcome) {
+  if (failure_probability) *failure_probability = std::min(*failure_probability, outcome.risk);
+}
 
 CountedRange counted_range(const std::optional<CountFact>& low, const CountFact& high, double from, double to) {
   CountedRange range{from, to, std::nullopt, Level::kProved, std::nullopt};

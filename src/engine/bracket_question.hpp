@@ -24,6 +24,9 @@ struct FoundValues {
   std::vector<Mode> modes;
 };
 
+/// What several statements rest on is counted once: none fails with more than the document has spent in all.
+void within_document(std::optional<double>& failure_probability, const Outcome& outcome);
+
 /// All that was found, ascending, and the range that the counts at its ends show complete.
 struct FoundRange {
   std::vector<FoundValues> values;
