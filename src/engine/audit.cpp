@@ -132,7 +132,7 @@ class Audit {
       give_up();
       return {};
     }
-    CountRunner runner(counter_, request_, context_, pool_, outcome_);
+    CountRunner runner(counter_, context_, pool_, outcome_);
     if (Status status = runner.open(); !status.ok()) return status;
     std::vector<double> shifts = shifts_in_gaps(clusters_, from_, to_);
     if (!std::isfinite(shifts.front())) shifts.erase(shifts.begin());

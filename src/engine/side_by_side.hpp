@@ -13,9 +13,8 @@ class CountRunner {
  public:
   /// As many lanes as the forecast of `counter`'s pencil allows, at most one a thread of the request. What an earlier
   /// run left is taken from `context`'s journal. All references outlive the runner.
-  CountRunner(PencilCounter& counter, const Request& request, const RunContext& context, ThreadPool& pool,
-              Outcome& outcome)
-      : counter_(counter), request_(request), context_(context), pool_(pool), outcome_(outcome) {}
+  CountRunner(PencilCounter& counter, const RunContext& context, ThreadPool& pool, Outcome& outcome)
+      : counter_(counter), context_(context), pool_(pool), outcome_(outcome) {}
 
   /// Reads the journal, if there is one. Call once, before the first batch.
   Status open();
@@ -34,7 +33,6 @@ class CountRunner {
   Status record(const Task& task);
 
   PencilCounter& counter_;
-  const Request& request_;
   const RunContext& context_;
   ThreadPool& pool_;
   Outcome& outcome_;
