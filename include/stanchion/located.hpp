@@ -14,17 +14,17 @@ namespace stanchion {
 
 /// The kinds of fault that a direction is named by.
 enum class Cause {
-  kUnresolved,          ///< sign or membership is not certain: no cause is named
-  kLoosePart,           ///< a part that can move as a rigid body
-  kMechanism,           ///< a hinge, a pinned chain, a pattern of elements without resistance
-  kUnattachedDof,       ///< an equation without any stiffness
-  kMissingRotation,     ///< rotations that nothing resists, node by node
-  kNegativeSpring,      ///< one spring to the ground of negative stiffness
-  kNegativePatch,       ///< a few nodes whose elements give way
-  kUnstableWhole,       ///< the reference state is past a critical load
-  kRedundantConstraint, ///< a constraint that repeats others
-  kNearMechanism,       ///< positive, but weak
-  kOverStiffCoupling,   ///< rows whose size swamps their neighbours
+  kUnresolved,           ///< sign or membership is not certain: no cause is named
+  kLoosePart,            ///< a part that can move as a rigid body
+  kMechanism,            ///< a hinge, a pinned chain, a pattern of elements without resistance
+  kUnattachedDof,        ///< an equation without any stiffness
+  kMissingRotation,      ///< rotations that nothing resists, node by node
+  kNegativeSpring,       ///< one spring to the ground of negative stiffness
+  kNegativePatch,        ///< a few nodes whose elements give way
+  kUnstableWhole,        ///< the reference state is past a critical load
+  kRedundantConstraint,  ///< a constraint that repeats others
+  kNearMechanism,        ///< positive, but weak
+  kOverStiffCoupling,    ///< rows whose size swamps their neighbours
 };
 
 /// One equation's part in a direction.
@@ -38,16 +38,17 @@ struct DofShare {
 /// One cause: a direction, or several that belong together (the rigid motions of one part).
 struct Direction {
   Cause cause = Cause::kUnresolved;
-  int sign = 0;       ///< -1 negative, 0 zero at the resolution, 1 positive
-  Index count = 1;    ///< directions it stands for
-  double energy = 0;  ///< x^T K x / x^T diag(K) x; the one largest in size of `count`
+  int sign = 0;                    ///< -1 negative, 0 zero at the resolution, 1 positive
+  Index count = 1;                 ///< directions it stands for
+  double energy = 0;               ///< x^T K x / x^T diag(K) x; the one largest in size of `count`
   std::optional<double> residual;  ///< || A_s y || of the scaled matrix, y a unit vector (zero directions)
   std::vector<DofShare> nodes;     ///< ranked, the largest first; the first few
   Index moving_rows = 0, moving_nodes = 0;  ///< all that take part
-  std::optional<Index> component;  ///< index into `components`
+  std::optional<Index> component;           ///< index into `components`
   std::vector<std::string> motions;
   std::string explanation, remedy;
-  std::vector<std::array<float, 3>> shape;  ///< by node of the picture: how it moves, the largest 1; may be empty
+  std::vector<std::array<float, 3>>
+      shape;  ///< by node of the picture: how it moves, the largest 1; may be empty
 };
 
 /// Mass of a model by direction, and its centre.
@@ -59,7 +60,7 @@ struct MassTotals {
 /// A connected part. Nodes that share a stiffness, and equations of one node, belong together.
 struct ComponentRecord {
   Index rows = 0, nodes = 0;
-  Index nullity = 0;       ///< zero directions found in it
+  Index nullity = 0;                                  ///< zero directions found in it
   std::optional<std::array<double, 6>> rigid_energy;  ///< of its six rigid motions (x y z, turns about x y z)
 };
 
@@ -69,9 +70,10 @@ struct LocalAccuracy {
   Index vectors = 0;
   double attention = 8, alarm = 12;  ///< levels, in digits
   double typical = 0, largest = 0;   ///< median and maximum
-  std::vector<std::pair<double, Index>> histogram;  ///< lower edge in digits, equations; bins half a digit wide
-  std::vector<DofShare> worst;                      ///< share holds the digits
-  std::vector<float> by_node;                       ///< the picture's nodes; may be empty
+  std::vector<std::pair<double, Index>>
+      histogram;                ///< lower edge in digits, equations; bins half a digit wide
+  std::vector<DofShare> worst;  ///< share holds the digits
+  std::vector<float> by_node;   ///< the picture's nodes; may be empty
 };
 
 /// What there is to draw.
@@ -86,9 +88,9 @@ struct LocateOutcome {
   std::vector<Direction> directions;  ///< the gravest first
   std::vector<ComponentRecord> components;
   Index components_left_out = 0;
-  Index negative = 0, zero = 0;    ///< that the inertia states
-  Index not_located = 0;           ///< of those, without an entry above
-  double weak_below = 0;           ///< energy ratio that counts as weak
+  Index negative = 0, zero = 0;  ///< that the inertia states
+  Index not_located = 0;         ///< of those, without an entry above
+  double weak_below = 0;         ///< energy ratio that counts as weak
   std::optional<MassTotals> mass;
   std::optional<LocalAccuracy> accuracy;
   Picture picture;

@@ -15,7 +15,8 @@ class LocateCommand : public QuestionCommand {
 void LocateCommand::declare(Arguments& arguments) {
   QuestionCommand::declare(arguments);
   arguments.closing(
-      "Exit code 0: nothing located; 1: causes found; 3: the sign or the place of a direction is unresolved.\n\n"
+      "Exit code 0: nothing located; 1: causes found; 3: the sign or the place of a direction is "
+      "unresolved.\n\n"
       "Examples:\n"
       "  stanchion locate K.mtx --dofs dofs.csv --nodes nodes.csv\n"
       "  stanchion locate K.mtx --dofs dofs.csv --nodes nodes.csv --mass M.mtx --json answer.json");

@@ -29,7 +29,8 @@ inline Index whole_blocks(Index number) {
   return (number + kBlockVectors - 1) / kBlockVectors * kBlockVectors;
 }
 
-/// Calls use(block) on a copy of every eight columns, each kBlockVectors doubles a row, and puts the block back.
+/// Calls use(block) on a copy of every eight columns, each kBlockVectors doubles a row, and puts the block
+/// back.
 template <class Use>
 void each_block(Columns& columns, const Use& use) {
   if (columns.count == kBlockVectors) {

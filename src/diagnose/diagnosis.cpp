@@ -19,16 +19,16 @@
 namespace stanchion {
 namespace {
 
-constexpr std::size_t kShown = 24;        ///< ranked equations of a direction
+constexpr std::size_t kShown = 24;  ///< ranked equations of a direction
 constexpr std::size_t kPartsShown = 200;
-constexpr Index kMostColumns = 64;        ///< vectors of one part that are looked at together
-constexpr Index kSpareColumns = 2;        ///< to see what lies behind the wanted ones
+constexpr Index kMostColumns = 64;  ///< vectors of one part that are looked at together
+constexpr Index kSpareColumns = 2;  ///< to see what lies behind the wanted ones
 /// A direction is told from the rest of the spectrum when the next one is so many times larger.
 constexpr double kGap = 100;
-constexpr double kSharpenAbove = 8;       ///< a resolution this many times its bound can be made smaller
-constexpr double kCouplingDigits = 9;     ///< lost in one coupling: worth an entry
+constexpr double kSharpenAbove = 8;    ///< a resolution this many times its bound can be made smaller
+constexpr double kCouplingDigits = 9;  ///< lost in one coupling: worth an entry
 constexpr Index kAccuracyVectors = 32;
-constexpr double kHalfShare = 0.9;        ///< of the energy that names the nodes of a patch
+constexpr double kHalfShare = 0.9;  ///< of the energy that names the nodes of a patch
 constexpr double kZeroActive = 1e-6, kWeakActive = 1e-4, kZeroRigid = 1e-4, kWeakRigid = 1e-2;
 
 /// Which Ritz pairs of a part are zero and which are weak, and whether they stand apart from the rest.
@@ -139,7 +139,8 @@ class Diagnostician {
       if (!(value < in_.options.weak_below) || value < 0) break;
       const bool settled = ritz.residual[k] < 0.1 * value;
       if (!settled) break;
-      const bool gap = k + 1 < ritz.value.size() ? std::fabs(ritz.value[k + 1]) > kGap * value : exhausted && begin == 0;
+      const bool gap =
+          k + 1 < ritz.value.size() ? std::fabs(ritz.value[k + 1]) > kGap * value : exhausted && begin == 0;
       if (gap) last = k + 1;
     }
     for (std::size_t k = begin; k < last; ++k) choice.weak.push_back(static_cast<Index>(k));
@@ -211,7 +212,8 @@ class Diagnostician {
     }
     direction.nodes = ranked(s_, rows, share, kShown);
     const Index part = part_of_row(rows.front());
-    const bool one_part = std::all_of(rows.begin(), rows.end(), [&](Index row) { return part_of_row(row) == part; });
+    const bool one_part =
+        std::all_of(rows.begin(), rows.end(), [&](Index row) { return part_of_row(row) == part; });
     if (one_part) direction.component = part;
     for (const NodeMotion* motion : members) ++nullity_[s_.part_of[static_cast<std::size_t>(motion->node)]];
     CauseFacts facts;
@@ -236,7 +238,8 @@ class Diagnostician {
     const PurifyOptions options{weak ? kWeakActive : kZeroActive, weak ? kWeakRigid : kZeroRigid};
     auto bundles = purify(s_, in_.matrix, near_.x, wanted, options);
     std::vector<char> redundant;
-    for (const Bundle& bundle : bundles) redundant.push_back(of_multipliers(bundle.x, row_shares(s_, bundle.x)) > 0.99);
+    for (const Bundle& bundle : bundles)
+      redundant.push_back(of_multipliers(bundle.x, row_shares(s_, bundle.x)) > 0.99);
     if (!weak) merge_redundant(bundles, redundant);
     judge(bundles);
     for (const Bundle& bundle : bundles) add_bundle(bundle, weak);
@@ -245,9 +248,8 @@ class Diagnostician {
   /// The vectors found are null vectors as far as double precision can tell.
   bool settled(Index part, const std::vector<Index>& columns) const {
     const Ritz& ritz = near_.parts[static_cast<std::size_t>(part)].ritz;
-    return std::all_of(columns.begin(), columns.end(), [&](Index k) {
-      return ritz.residual[static_cast<std::size_t>(k)] <= resolution_;
-    });
+    return std::all_of(columns.begin(), columns.end(),
+                       [&](Index k) { return ritz.residual[static_cast<std::size_t>(k)] <= resolution_; });
   }
 
   void add_unresolved(Index part, Index count) {
@@ -261,13 +263,14 @@ class Diagnostician {
     direction.sign = 0;
     CauseFacts facts;
     facts.unresolved_because =
-        "The eigenvalues of this part run down to the resolution without a gap, so that what is called zero cannot be "
+        "The eigenvalues of this part run down to the resolution without a gap, so that what is called zero "
+        "cannot be "
         "told from what is merely soft; no cause is named.";
     add(std::move(direction), std::move(facts));
   }
 
-  /// Energy and residual of every bundle's vectors against the matrix itself, by one product in double-double a pass:
-  /// bundles of different parts share columns.
+  /// Energy and residual of every bundle's vectors against the matrix itself, by one product in double-double
+  /// a pass: bundles of different parts share columns.
   void judge(const std::vector<Bundle>& bundles) {
     judged_.assign(bundles.size(), {});
     std::vector<Index> used(static_cast<std::size_t>(s_.parts), 0), at(bundles.size());
@@ -282,14 +285,16 @@ class Diagnostician {
     Columns x(s_.rows, whole_blocks(most));
     for (std::size_t b = 0; b < bundles.size(); ++b) {
       const LocalVectors& v = bundles[b].x;
-      for (std::size_t i = 0; i < v.rows.size(); ++i) std::copy_n(v.row(i), v.count, x.row(v.rows[i]) + at[b]);
+      for (std::size_t i = 0; i < v.rows.size(); ++i)
+        std::copy_n(v.row(i), v.count, x.row(v.rows[i]) + at[b]);
     }
     const Columns ax = times_extended(in_.matrix, x, pool_);
     std::vector<double> residual(static_cast<std::size_t>(s_.parts) * static_cast<std::size_t>(most), 0.0);
     for (Index i = 0; i < s_.rows; ++i) {
       const auto part = static_cast<std::size_t>(part_of_row(i));
       for (Index c = 0; c < most; ++c) {
-        residual[part * static_cast<std::size_t>(most) + static_cast<std::size_t>(c)] += ax.row(i)[c] * ax.row(i)[c];
+        residual[part * static_cast<std::size_t>(most) + static_cast<std::size_t>(c)] +=
+            ax.row(i)[c] * ax.row(i)[c];
       }
     }
     for (std::size_t b = 0; b < bundles.size(); ++b) {
@@ -325,7 +330,8 @@ class Diagnostician {
     const LocalVectors moving = restricted(bundle.x, bundle.nodes);
     direction.moving_rows = static_cast<Index>(moving.rows.size());
     const std::vector<double> share = row_shares(s_, moving);
-    if (weak && of_couplings(moving, share) > 0.9) return;  // the common motion of what is coupled: named as that
+    if (weak && of_couplings(moving, share) > 0.9)
+      return;  // the common motion of what is coupled: named as that
     direction.nodes = ranked(s_, moving.rows, share, kShown);
     direction.motions = motions_in_words(bundle.rigid);
     direction.shape = shape_of(s_, *in_.matrix.scale, moving, moving.count - 1, picture_.at_node,
@@ -339,7 +345,8 @@ class Diagnostician {
     facts.seam = seams_.in_words(s_, bundle.nodes);
     const bool residual_small = judged.residual <= std::max(resolution_, 1e-9);
     if (!weak && (!residual_small || std::fabs(judged.energy) > resolution_)) {
-      facts.unresolved_because = "The motion found does not satisfy K x = 0 to the resolution; no cause is named.";
+      facts.unresolved_because =
+          "The motion found does not satisfy K x = 0 to the resolution; no cause is named.";
       direction.motions.clear();
     } else if (weak) {
       direction.cause = Cause::kNearMechanism;
@@ -381,11 +388,13 @@ class Diagnostician {
     if (of_multipliers(moving, share) > 0.99) return Cause::kRedundantConstraint;
     const auto count = static_cast<Index>(bundle.x.count);
     if (facts.rigid) {
-      const bool single_turn = count == 1 && !bundle.whole_part && s_.placed && turns(bundle.rigid.motions.front());
+      const bool single_turn =
+          count == 1 && !bundle.whole_part && s_.placed && turns(bundle.rigid.motions.front());
       return single_turn ? Cause::kMechanism : Cause::kLoosePart;
     }
     // Without coordinates (or a dof map) a part that moves everywhere, in no more ways than a rigid body has.
-    const bool everywhere = static_cast<Index>(bundle.nodes.size()) == s_.part_nodes[static_cast<std::size_t>(bundle.part)];
+    const bool everywhere =
+        static_cast<Index>(bundle.nodes.size()) == s_.part_nodes[static_cast<std::size_t>(bundle.part)];
     if ((!s_.placed || !has_displacements(bundle)) && everywhere && count <= 6) {
       facts.by_connectivity = facts.whole_part = true;
       return Cause::kLoosePart;
@@ -407,24 +416,25 @@ class Diagnostician {
     if (has_multipliers()) {
       negative_left_ = std::max<Index>(0, in_.certified.inertia.negative - in_.rightly_negative);
       if (negative_left_ > 0) {
-        add_negative_unresolved(negative_left_,
-                                "Negative directions of the structure on its constraints are counted here, not located.");
+        add_negative_unresolved(
+            negative_left_,
+            "Negative directions of the structure on its constraints are counted here, not located.");
       }
       return;
     }
     if (2 * inertia_.negative > s_.rows) return add_negated();
-    NegativePairs pairs = find_negative(s_, in_.matrix, factor_, motions_, near_, resolution_, inertia_.negative,
-                                        in_.options.most, pool_);
+    NegativePairs pairs = find_negative(s_, in_.matrix, factor_, motions_, near_, resolution_,
+                                        inertia_.negative, in_.options.most, pool_);
     const auto found = static_cast<Index>(pairs.ritz.value.size());
     separate_degenerate(pairs);
-    const std::vector<NegativeSpring> springs =
-        find_negative_springs(s_, in_.matrix, probe(), factor_);
+    const std::vector<NegativeSpring> springs = find_negative_springs(s_, in_.matrix, probe(), factor_);
     std::vector<char> taken(springs.size(), 0);
     for (Index k = 0; k < found; ++k) add_negative_pair(pairs, k, springs, taken);
     merge_unstable();
     const Index asked = std::min(inertia_.negative, in_.options.most);
     if (found < asked) {
-      add_negative_unresolved(asked - found, "The iteration did not settle on these negative directions; no cause is named.");
+      add_negative_unresolved(
+          asked - found, "The iteration did not settle on these negative directions; no cause is named.");
     }
   }
 
@@ -453,8 +463,10 @@ class Diagnostician {
     direction.moving_rows = s_.rows;
     add(std::move(direction), {});
     out_.directions.back().explanation =
-        "Most directions are negative: the matrix as a whole has the wrong sign, or is not a stiffness matrix.";
-    out_.directions.back().remedy = "Check that K and G are not exchanged, and the sign with which K was written.";
+        "Most directions are negative: the matrix as a whole has the wrong sign, or is not a stiffness "
+        "matrix.";
+    out_.directions.back().remedy =
+        "Check that K and G are not exchanged, and the sign with which K was written.";
   }
 
   /// Equal eigenvalues mix their vectors: turn each such pair until its nodes stand apart the most.
@@ -465,7 +477,8 @@ class Diagnostician {
     for (int sweep = 0; sweep < 2; ++sweep) {
       for (std::size_t a = 0; a + 1 < n; ++a) {
         for (std::size_t b = a + 1; b < n; ++b) {
-          if (pairs.ritz.value[b] - pairs.ritz.value[a] > kDegenerate * std::fabs(pairs.ritz.value[a])) continue;
+          if (pairs.ritz.value[b] - pairs.ritz.value[a] > kDegenerate * std::fabs(pairs.ritz.value[a]))
+            continue;
           double best = -1, cosine = 1, sine = 0;
           for (int k = 0; k < kAngles; ++k) {
             const double angle = 3.14159265358979 * k / kAngles, c = std::cos(angle), d = std::sin(angle);
@@ -508,9 +521,10 @@ class Diagnostician {
     direction.moving_nodes = nodes_holding(moving, share, kHalfShare);
     direction.moving_rows = static_cast<Index>(moving.rows.size());
     direction.nodes = ranked(s_, moving.rows, share, kShown);
-    direction.shape = shape_of(s_, *in_.matrix.scale, moving, 0, picture_.at_node, picture_.picture.node.size());
-    direction.component = part_of_row(moving.rows[static_cast<std::size_t>(
-        std::max_element(share.begin(), share.end()) - share.begin())]);
+    direction.shape =
+        shape_of(s_, *in_.matrix.scale, moving, 0, picture_.at_node, picture_.picture.node.size());
+    direction.component = part_of_row(
+        moving.rows[static_cast<std::size_t>(std::max_element(share.begin(), share.end()) - share.begin())]);
     CauseFacts facts;
     facts.place = place_of(direction);
     name_negative(direction, facts, moving, share, springs, taken, k, pairs);
@@ -545,12 +559,14 @@ class Diagnostician {
       return;
     }
     const Index nodes = s_.part_nodes[static_cast<std::size_t>(*direction.component)];
-    const bool local = direction.moving_nodes <= std::max<Index>(12, nodes / 50) && 2 * direction.moving_nodes < nodes;
+    const bool local =
+        direction.moving_nodes <= std::max<Index>(12, nodes / 50) && 2 * direction.moving_nodes < nodes;
     direction.cause = local ? Cause::kNegativePatch : Cause::kUnstableWhole;
   }
 
   /// The culprit's equation comes first, whatever else moves along.
-  void lead_with(Direction& direction, Index row, const LocalVectors& moving, const std::vector<double>& share) const {
+  void lead_with(Direction& direction, Index row, const LocalVectors& moving,
+                 const std::vector<double>& share) const {
     const Index equation = s_.file_equation(row);
     std::erase_if(direction.nodes, [&](const DofShare& d) { return d.equation == equation; });
     double own = 0;
@@ -577,7 +593,8 @@ class Diagnostician {
     std::vector<Direction> kept;
     for (Direction& direction : out_.directions) {
       auto same = std::find_if(kept.begin(), kept.end(), [&](const Direction& d) {
-        return d.cause == Cause::kUnstableWhole && direction.cause == d.cause && d.component == direction.component;
+        return d.cause == Cause::kUnstableWhole && direction.cause == d.cause &&
+               d.component == direction.component;
       });
       if (same == kept.end()) {
         kept.push_back(std::move(direction));
@@ -616,7 +633,8 @@ class Diagnostician {
       for (std::size_t n = 0; n < x.nodes.size(); ++n) {
         auto& rows = of_node[x.nodes[n]];
         for (std::size_t i = x.first[n]; i < x.first[n + 1]; ++i) {
-          auto at = std::find_if(rows.begin(), rows.end(), [&](const auto& r) { return r.first == x.rows[i]; });
+          auto at =
+              std::find_if(rows.begin(), rows.end(), [&](const auto& r) { return r.first == x.rows[i]; });
           if (at == rows.end()) at = rows.insert(rows.end(), {x.rows[i], std::vector<double>(count, 0.0)});
           std::copy_n(x.row(i), x.count, at->second.begin() + static_cast<std::ptrdiff_t>(from));
         }
@@ -675,21 +693,24 @@ class Diagnostician {
   void account() {
     out_.negative = has_multipliers() ? negative_left_ : inertia_.negative;
     out_.zero = inertia_.zero;
-    std::stable_sort(out_.directions.begin(), out_.directions.end(), [](const Direction& a, const Direction& b) {
-      const auto rank = [](const Direction& d) { return d.cause == Cause::kUnresolved ? 3 : d.sign + 1; };
-      return rank(a) < rank(b);
-    });
+    std::stable_sort(
+        out_.directions.begin(), out_.directions.end(), [](const Direction& a, const Direction& b) {
+          const auto rank = [](const Direction& d) { return d.cause == Cause::kUnresolved ? 3 : d.sign + 1; };
+          return rank(a) < rank(b);
+        });
     const auto most = static_cast<std::size_t>(in_.options.most);
     if (out_.directions.size() > most) out_.directions.resize(most);
     Index zero = 0, negative = 0;
-    for (const Direction& d : out_.directions) (d.sign == 0 ? zero : d.sign < 0 ? negative : zero) += d.sign == 1 ? 0 : d.count;
+    for (const Direction& d : out_.directions)
+      (d.sign == 0 ? zero : d.sign < 0 ? negative : zero) += d.sign == 1 ? 0 : d.count;
     Index found = static_cast<Index>(motions_.size());
     for (const PartChoice& choice : choice_) found += static_cast<Index>(choice.zero.size());
     if (found < inertia_.zero && found == zero) {
       Direction rest;
       rest.count = inertia_.zero - found;
       CauseFacts facts;
-      facts.unresolved_because = "These zero directions were counted but not reached by the vectors at hand; no cause is named.";
+      facts.unresolved_because =
+          "These zero directions were counted but not reached by the vectors at hand; no cause is named.";
       add(std::move(rest), std::move(facts));
       zero = inertia_.zero;
     }
@@ -712,7 +733,8 @@ class Diagnostician {
     }
     out_.components_left_out = s_.parts - static_cast<Index>(shown);
     for (Direction& direction : out_.directions) {
-      if (direction.component && static_cast<std::size_t>(*direction.component) >= shown) direction.component.reset();
+      if (direction.component && static_cast<std::size_t>(*direction.component) >= shown)
+        direction.component.reset();
     }
   }
 
@@ -771,6 +793,8 @@ class Diagnostician {
 
 }  // namespace
 
-Diagnosis diagnose(const DiagnosisInput& input, ThreadPool& pool) { return Diagnostician(input, pool).run(); }
+Diagnosis diagnose(const DiagnosisInput& input, ThreadPool& pool) {
+  return Diagnostician(input, pool).run();
+}
 
 }  // namespace stanchion

@@ -15,12 +15,12 @@ namespace stanchion {
 
 struct DiagnosisInput {
   const Analysis& analysis;
-  const ShiftedMatrix& matrix;           ///< as judged, without offset
-  const ShiftedMatrix* bare = nullptr;   ///< K without what is added, where something is
-  const KeptFactorization& kept;         ///< of A_s - cI
-  const CertifiedInertia& certified;     ///< level proved
+  const ShiftedMatrix& matrix;          ///< as judged, without offset
+  const ShiftedMatrix* bare = nullptr;  ///< K without what is added, where something is
+  const KeptFactorization& kept;        ///< of A_s - cI
+  const CertifiedInertia& certified;    ///< level proved
   ModelNames names;
-  Index rightly_negative = 0;             ///< negative directions that multipliers bring along: the rank of their rows
+  Index rightly_negative = 0;  ///< negative directions that multipliers bring along: the rank of their rows
   LocateOptions options;
   std::uint64_t seed = 1;
 };
@@ -31,9 +31,10 @@ struct Diagnosis {
   std::optional<double> sharper_resolution;
 };
 
-/// Finds, purifies, judges and names. When `sharper_resolution` is set nothing else is filled: certify again with it.
-/// Every located direction is held against A_s itself in double-double. Reproducible for any number of threads.
-/// Throws std::bad_alloc. Cost: some ten solves and products; memory: some vectors beside the factor.
+/// Finds, purifies, judges and names. When `sharper_resolution` is set nothing else is filled: certify again
+/// with it. Every located direction is held against A_s itself in double-double. Reproducible for any number
+/// of threads. Throws std::bad_alloc. Cost: some ten solves and products; memory: some vectors beside the
+/// factor.
 Diagnosis diagnose(const DiagnosisInput& input, ThreadPool& pool);
 
 }  // namespace stanchion

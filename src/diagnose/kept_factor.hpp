@@ -20,11 +20,13 @@ class KeptFactor {
   /// x := L^-T |D|^-1 L^-1 x: positive definite, the inverse but for the signs of the pivots.
   void solve_absolute(Columns& x);
 
-  /// x := L^-T |D|^-1/2 x. For Gaussian x the squares have the diagonal of the inverse as their mean, if D > 0.
+  /// x := L^-T |D|^-1/2 x. For Gaussian x the squares have the diagonal of the inverse as their mean, if D >
+  /// 0.
   void half_solve(Columns& x);
 
   /// Up to `most` vectors L^-T v, v the eigenvectors of the pivots lowest in value: on their span the matrix
-  /// factored is negative, if there are as many negative pivots. Fewer columns are filled where pivots run out.
+  /// factored is negative, if there are as many negative pivots. Fewer columns are filled where pivots run
+  /// out.
   Columns lowest_pivot_vectors(Index most, Index* filled);
 
  private:

@@ -22,7 +22,8 @@ struct LocalVectors {
 };
 
 /// The given columns of x on the nodes' rows.
-LocalVectors gather(const Structure& structure, std::vector<Index> nodes, const Columns& x, std::span<const Index> columns);
+LocalVectors gather(const Structure& structure, std::vector<Index> nodes, const Columns& x,
+                    std::span<const Index> columns);
 
 /// Combinations with the given coefficient vectors.
 LocalVectors combined(const LocalVectors& local, const std::vector<std::vector<double>>& coefficients);

@@ -37,13 +37,15 @@ double open_residual(const NearZero& found, double wanted) {
 }
 
 void project_all(const Structure& s, NearZero& found, Columns& product) {
-  for (PartPairs& pairs : found.parts) pairs.ritz = project(found.x, product, s.part(pairs.part), pairs.used, true);
+  for (PartPairs& pairs : found.parts)
+    pairs.ritz = project(found.x, product, s.part(pairs.part), pairs.used, true);
 }
 
 }  // namespace
 
 NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
-                        const std::vector<NodeMotion>& motions, const NearZeroOptions& options, ThreadPool& pool) {
+                        const std::vector<NodeMotion>& motions, const NearZeroOptions& options,
+                        ThreadPool& pool) {
   NearZero found;
   found.x = random_columns(structure.rows, options.columns, options.seed);
   for (Index part = 0; part < structure.parts; ++part) found.parts.push_back({part, 0, {}});

@@ -13,9 +13,15 @@ constexpr Index kGuards = 4;
 
 class Iteration {
  public:
-  Iteration(const Structure& s, const ShiftedMatrix& matrix, KeptFactor& factor, const std::vector<NodeMotion>& motions,
-            const NearZero& zero, double zero_limit, ThreadPool& pool)
-      : s_(s), matrix_(matrix), factor_(factor), motions_(motions), zero_(zero), zero_limit_(zero_limit), pool_(pool) {
+  Iteration(const Structure& s, const ShiftedMatrix& matrix, KeptFactor& factor,
+            const std::vector<NodeMotion>& motions, const NearZero& zero, double zero_limit, ThreadPool& pool)
+      : s_(s),
+        matrix_(matrix),
+        factor_(factor),
+        motions_(motions),
+        zero_(zero),
+        zero_limit_(zero_limit),
+        pool_(pool) {
     all_.resize(static_cast<std::size_t>(s.rows));
     std::iota(all_.begin(), all_.end(), 0);
   }
@@ -80,7 +86,8 @@ class Iteration {
     }
   }
 
-  /// One Rayleigh-Ritz step on the span of x, the residuals, preconditioned and plain, and the last directions.
+  /// One Rayleigh-Ritz step on the span of x, the residuals, preconditioned and plain, and the last
+  /// directions.
   Ritz step() {
     const Index width = x_.count;
     Columns w(s_.rows, width);
@@ -114,12 +121,14 @@ class Iteration {
     std::vector<double> overlap(static_cast<std::size_t>(width) * static_cast<std::size_t>(width), 0.0);
     for (Index i = 0; i < s_.rows; ++i) {
       for (Index a = 0; a < width; ++a) {
-        for (Index b = 0; b < width; ++b) overlap[static_cast<std::size_t>(a * width + b)] += before.row(i)[a] * x_.row(i)[b];
+        for (Index b = 0; b < width; ++b)
+          overlap[static_cast<std::size_t>(a * width + b)] += before.row(i)[a] * x_.row(i)[b];
       }
     }
     for (Index i = 0; i < s_.rows; ++i) {
       for (Index a = 0; a < width; ++a) {
-        for (Index b = 0; b < width; ++b) p_.row(i)[b] -= before.row(i)[a] * overlap[static_cast<std::size_t>(a * width + b)];
+        for (Index b = 0; b < width; ++b)
+          p_.row(i)[b] -= before.row(i)[a] * overlap[static_cast<std::size_t>(a * width + b)];
       }
     }
     return ritz;

@@ -33,7 +33,8 @@ class Finder {
     for (Index node = 0; node < s_.nodes; ++node) {
       const auto a = static_cast<std::size_t>(node);
       const Index m = rows_of(node);
-      for (Index r = 0; r < m; ++r) local_[static_cast<std::size_t>(s_.rows_of_node[static_cast<std::size_t>(s_.first_row[a] + r)])] = r;
+      for (Index r = 0; r < m; ++r)
+        local_[static_cast<std::size_t>(s_.rows_of_node[static_cast<std::size_t>(s_.first_row[a] + r)])] = r;
       block_start_[a + 1] = block_start_[a] + (m <= kMostRows ? Offset{m} * m : 0);
     }
   }
@@ -64,7 +65,8 @@ class Finder {
     const auto n = static_cast<std::size_t>(m);
     std::vector<char> done(n, 0);
     for (std::size_t r = 0; r < n; ++r) {
-      const auto position = static_cast<std::size_t>(s_.rows_of_node[static_cast<std::size_t>(s_.first_row[a]) + r]);
+      const auto position =
+          static_cast<std::size_t>(s_.rows_of_node[static_cast<std::size_t>(s_.first_row[a]) + r]);
       if (s_.kind[position] == DofKind::kMultiplier) {
         done[r] = 1;
         block[r * n + r] = 1;
@@ -102,7 +104,8 @@ class Finder {
       const Index node = s_.node_of[static_cast<std::size_t>(column)];
       const auto n = static_cast<std::size_t>(node);
       for (Index c = first[n]; c < first[n + 1]; ++c) {
-        const double v = found_[static_cast<std::size_t>(c)].entry[static_cast<std::size_t>(local_[static_cast<std::size_t>(column)])];
+        const double v = found_[static_cast<std::size_t>(c)]
+                             .entry[static_cast<std::size_t>(local_[static_cast<std::size_t>(column)])];
         if (v != 0) terms.push_back({c, row, a * v});
       }
     };
@@ -117,12 +120,14 @@ class Finder {
         }
       }
     }
-    std::sort(terms.begin(), terms.end(),
-              [](const Term& x, const Term& y) { return x.motion != y.motion ? x.motion < y.motion : x.row < y.row; });
+    std::sort(terms.begin(), terms.end(), [](const Term& x, const Term& y) {
+      return x.motion != y.motion ? x.motion < y.motion : x.row < y.row;
+    });
     for (std::size_t k = 0; k < terms.size();) {
       std::size_t end = k;
       double sum = 0;
-      for (; end < terms.size() && terms[end].motion == terms[k].motion && terms[end].row == terms[k].row; ++end) {
+      for (; end < terms.size() && terms[end].motion == terms[k].motion && terms[end].row == terms[k].row;
+           ++end) {
         sum += terms[end].value;
       }
       double& most = worst[static_cast<std::size_t>(terms[k].motion)];
@@ -154,7 +159,8 @@ std::vector<NodeMotion> find_node_motions(const Structure& structure, const Shif
 
 void remove(const std::vector<NodeMotion>& motions, const Structure& structure, Columns& x) {
   for (const NodeMotion& motion : motions) {
-    const Index* rows = structure.rows_of_node.data() + structure.first_row[static_cast<std::size_t>(motion.node)];
+    const Index* rows =
+        structure.rows_of_node.data() + structure.first_row[static_cast<std::size_t>(motion.node)];
     for (Index c = 0; c < x.count; ++c) {
       double along = 0;
       for (std::size_t r = 0; r < motion.entry.size(); ++r) along += motion.entry[r] * x.row(rows[r])[c];

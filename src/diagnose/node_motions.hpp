@@ -15,8 +15,8 @@ struct NodeMotion {
   bool empty_row = false;     ///< one dof, whose row is empty
 };
 
-/// All of them, mutually orthogonal. Cost: one pass over the entries and an eigenproblem of each node's own block.
-/// Multipliers are left out: their diagonal is rightly zero.
+/// All of them, mutually orthogonal. Cost: one pass over the entries and an eigenproblem of each node's own
+/// block. Multipliers are left out: their diagonal is rightly zero.
 std::vector<NodeMotion> find_node_motions(const Structure& structure, const ShiftedMatrix& matrix);
 
 /// x := x less its parts along the motions.

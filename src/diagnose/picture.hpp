@@ -14,8 +14,9 @@ struct ModelPicture {
   std::vector<Index> at_node;  ///< node of the structure -> number in the picture, -1 for none
 };
 
-/// Every node with a place. Links are pairs with stiffness between them, without the diagonals of meshes (two nodes that
-/// lie across from each other among common neighbours); left out in models of more than some ten thousand nodes.
+/// Every node with a place. Links are pairs with stiffness between them, without the diagonals of meshes (two
+/// nodes that lie across from each other among common neighbours); left out in models of more than some ten
+/// thousand nodes.
 ModelPicture make_picture(const Structure& structure, const ShiftedMatrix& matrix);
 
 }  // namespace stanchion

@@ -8,8 +8,8 @@
 namespace stanchion {
 namespace {
 
-constexpr double kPush = -1e-10;       ///< force over k_ii from which a push counts
-constexpr double kIsolated = 1e-6;     ///< what neighbours may feel of it
+constexpr double kPush = -1e-10;    ///< force over k_ii from which a push counts
+constexpr double kIsolated = 1e-6;  ///< what neighbours may feel of it
 constexpr std::size_t kMostCandidates = 32;
 
 /// Centre of every part's placed nodes and their spread.
@@ -86,15 +86,17 @@ std::vector<std::array<double, 6>> rigid_energies(const Structure& s, const Rigi
 
 namespace {
 
-/// Equations with a negative diagonal entry none of whose neighbours has one: no sum of sound elements gives that. The
-/// stiffness stated is twice the entry, a lower bound in size of what to add to make the equation sound again.
+/// Equations with a negative diagonal entry none of whose neighbours has one: no sum of sound elements gives
+/// that. The stiffness stated is twice the entry, a lower bound in size of what to add to make the equation
+/// sound again.
 std::vector<NegativeSpring> negative_diagonals(const Structure& s, const ShiftedMatrix& matrix) {
   std::vector<char> beside(static_cast<std::size_t>(s.rows), 0);
   const MatrixFamily& family = *matrix.family;
   for (Index j = 0; j < family.rows; ++j) {
     for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
       const Index i = family.row[k];
-      if (i == j || s.node_of[static_cast<std::size_t>(i)] == s.node_of[static_cast<std::size_t>(j)]) continue;
+      if (i == j || s.node_of[static_cast<std::size_t>(i)] == s.node_of[static_cast<std::size_t>(j)])
+        continue;
       if (s.diagonal[static_cast<std::size_t>(j)] < 0) beside[static_cast<std::size_t>(i)] = 1;
       if (s.diagonal[static_cast<std::size_t>(i)] < 0) beside[static_cast<std::size_t>(j)] = 1;
     }
@@ -134,7 +136,8 @@ std::vector<NegativeSpring> find_negative_springs(const Structure& s, const Shif
   });
   if (candidates.size() > 4096) candidates.resize(4096);
   std::vector<Index> at(static_cast<std::size_t>(s.rows), -1);
-  for (std::size_t c = 0; c < candidates.size(); ++c) at[static_cast<std::size_t>(candidates[c].row)] = static_cast<Index>(c);
+  for (std::size_t c = 0; c < candidates.size(); ++c)
+    at[static_cast<std::size_t>(candidates[c].row)] = static_cast<Index>(c);
   const MatrixFamily& family = *matrix.family;
   const auto feel = [&](Index row, Index neighbour) {
     const Index c = at[static_cast<std::size_t>(row)];
@@ -171,7 +174,8 @@ std::vector<NegativeSpring> find_negative_springs(const Structure& s, const Shif
   return springs;
 }
 
-std::vector<StiffCoupling> find_stiff_couplings(const Structure& s, const ShiftedMatrix& matrix, double digits) {
+std::vector<StiffCoupling> find_stiff_couplings(const Structure& s, const ShiftedMatrix& matrix,
+                                                double digits) {
   const double limit = std::pow(10.0, -digits);
   const MatrixFamily& family = *matrix.family;
   const auto rows = static_cast<std::size_t>(s.rows);
@@ -199,7 +203,8 @@ std::vector<StiffCoupling> find_stiff_couplings(const Structure& s, const Shifte
       neighbour_most[jj] = std::max(neighbour_most[jj], physical[ii]);
       const double together = physical[ii] + physical[jj] - 2 * std::fabs(a);
       if (std::fabs(together) < limit * (physical[ii] + physical[jj])) {
-        const double ratio = std::max(together, 1e-17 * (physical[ii] + physical[jj])) / (physical[ii] + physical[jj]);
+        const double ratio =
+            std::max(together, 1e-17 * (physical[ii] + physical[jj])) / (physical[ii] + physical[jj]);
         found.push_back({i, j, -std::log10(ratio)});
       }
     }

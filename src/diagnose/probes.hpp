@@ -1,4 +1,5 @@
-// What the six rigid motions of every part and single equations say about springs to the ground and couplings.
+// What the six rigid motions of every part and single equations say about springs to the ground and
+// couplings.
 #pragma once
 
 #include <vector>
@@ -10,7 +11,8 @@
 
 namespace stanchion {
 
-/// Columns 0 to 5: translations and turns of every part about its own centre, in scaled coordinates, and A_s times them.
+/// Columns 0 to 5: translations and turns of every part about its own centre, in scaled coordinates, and A_s
+/// times them.
 struct RigidProbe {
   bool turns = false;  ///< places are known: all six; otherwise the translations
   Columns motion, force;
@@ -20,8 +22,9 @@ RigidProbe probe_rigid_motions(const Structure& structure, const ShiftedMatrix& 
 /// Energy x^T K x / x^T diag(K) x of the six motions, by part; a motion that shows on no row has energy 0.
 std::vector<std::array<double, 6>> rigid_energies(const Structure& structure, const RigidProbe& probe);
 
-/// A spring to the ground of negative stiffness: the diagonal entry is negative and those of its neighbours are not; or, under a translation of everything its equation alone, among those it
-/// touches, feels a force, and one that pushes along.
+/// A spring to the ground of negative stiffness: the diagonal entry is negative and those of its neighbours
+/// are not; or, under a translation of everything its equation alone, among those it touches, feels a force,
+/// and one that pushes along.
 struct NegativeSpring {
   Index row = 0;          ///< position
   double stiffness = 0;   ///< negative, in the unit of K
@@ -35,8 +38,10 @@ struct StiffCoupling {
   Index row = 0, other = -1;  ///< positions; other -1: against all its neighbours
   double digits = 0;
 };
-/// Couplings that cost at least `digits` digits, the worst first: pairs of dofs of one kind whose common motion is that
-/// much softer than their difference, and diagonals that exceed those of their neighbours of the same kind as much.
-std::vector<StiffCoupling> find_stiff_couplings(const Structure& structure, const ShiftedMatrix& matrix, double digits);
+/// Couplings that cost at least `digits` digits, the worst first: pairs of dofs of one kind whose common
+/// motion is that much softer than their difference, and diagonals that exceed those of their neighbours of
+/// the same kind as much.
+std::vector<StiffCoupling> find_stiff_couplings(const Structure& structure, const ShiftedMatrix& matrix,
+                                                double digits);
 
 }  // namespace stanchion

@@ -73,9 +73,8 @@ class SparseSearch {
       if (covered.size() == n_) break;
     }
     for (Candidate& more : from_patches()) found.push_back(std::move(more));
-    std::stable_sort(found.begin(), found.end(), [](const Candidate& a, const Candidate& b) {
-      return a.nodes.size() < b.nodes.size();
-    });
+    std::stable_sort(found.begin(), found.end(),
+                     [](const Candidate& a, const Candidate& b) { return a.nodes.size() < b.nodes.size(); });
     return found;
   }
 
@@ -157,7 +156,8 @@ class SparseSearch {
     return found;
   }
 
-  /// Makes v exact: what leaves at rest all nodes that v leaves nearly at rest. Few moving nodes make a candidate.
+  /// Makes v exact: what leaves at rest all nodes that v leaves nearly at rest. Few moving nodes make a
+  /// candidate.
   void offer(std::vector<double> v, std::vector<Candidate>& found) const {
     constexpr double kNearlyAtRest = 1e-3;
     const std::vector<Index> moving = moving_nodes(combined(local_, {v}), kNearlyAtRest);
@@ -355,7 +355,8 @@ class Purifier {
     take_apart(part, local, std::move(rigid));
   }
 
-  /// Vectors beyond the rigid ones (coefficients `basis`), by sparsity; what has no sparse vector stays together.
+  /// Vectors beyond the rigid ones (coefficients `basis`), by sparsity; what has no sparse vector stays
+  /// together.
   void take_apart(Index part, const LocalVectors& local, std::vector<std::vector<double>> basis) {
     std::vector<SparseSearch::Candidate> chosen;
     for (const auto& candidate : SparseSearch(s_, matrix_, local, options_.active).run()) {
@@ -366,7 +367,8 @@ class Purifier {
     const auto left = complement(basis, local.count);
     if (left.empty()) return;
     const LocalVectors mixed = combined(local, left);
-    take_rigid_or_keep(part, restricted(mixed, moving_nodes(mixed, options_.active)), left.size() == 1 || chosen.empty());
+    take_rigid_or_keep(part, restricted(mixed, moving_nodes(mixed, options_.active)),
+                       left.size() == 1 || chosen.empty());
   }
 
   /// Sparse vectors on about the same nodes belong to one cause.

@@ -26,9 +26,10 @@ struct PurifyOptions {
 };
 
 /// Splits the columns of every part in `wanted`: rigid motions of the whole part first;
-/// then clusters of moving nodes that do not touch; then, within a cluster, the vectors with the fewest moving nodes
-/// (iteratively reweighted least squares; Daubechies, DeVore, Fornasier, Gunturk, Comm. Pure Appl. Math. 63 (2010)),
-/// and of those the ones that move together as one rigid body. Bundles together span what went in.
+/// then clusters of moving nodes that do not touch; then, within a cluster, the vectors with the fewest
+/// moving nodes (iteratively reweighted least squares; Daubechies, DeVore, Fornasier, Gunturk, Comm. Pure
+/// Appl. Math. 63 (2010)), and of those the ones that move together as one rigid body. Bundles together span
+/// what went in.
 std::vector<Bundle> purify(const Structure& structure, const ShiftedMatrix& matrix, const Columns& x,
                            const std::vector<std::pair<Index, std::vector<Index>>>& wanted,
                            const PurifyOptions& options);

@@ -12,8 +12,12 @@ namespace {
 
 using Triple = std::array<double, 3>;
 
-double dot(const Triple& a, const Triple& b) { return a[0] * b[0] + a[1] * b[1] + a[2] * b[2]; }
-double length(const Triple& a) { return std::sqrt(dot(a, a)); }
+double dot(const Triple& a, const Triple& b) {
+  return a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
+}
+double length(const Triple& a) {
+  return std::sqrt(dot(a, a));
+}
 Triple cross(const Triple& a, const Triple& b) {
   return {a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0]};
 }
@@ -58,19 +62,22 @@ std::string translation_in_words(const Triple& t) {
   const double size = length(t);
   const Triple unit{t[0] / size, t[1] / size, t[2] / size};
   const int axis = along_axis(unit);
-  return axis >= 0 ? fmt::format("translation {}", kAxis[axis]) : "translation along " + triple_in_words(unit);
+  return axis >= 0 ? fmt::format("translation {}", kAxis[axis])
+                   : "translation along " + triple_in_words(unit);
 }
 
 std::string rotation_in_words(const RigidFit& fit, const RigidMotion& motion, bool name_place) {
   const double w2 = dot(motion.w, motion.w), size = std::sqrt(w2);
   const Triple unit{motion.w[0] / size, motion.w[1] / size, motion.w[2] / size};
   const int axis = along_axis(unit);
-  std::string text = axis >= 0 ? fmt::format("rotation about {}", kAxis[axis]) : "rotation about " + triple_in_words(unit);
+  std::string text =
+      axis >= 0 ? fmt::format("rotation about {}", kAxis[axis]) : "rotation about " + triple_in_words(unit);
   if (!name_place) return text;
   const Triple arm = cross(motion.w, motion.t);
   const Triple through{fit.centre[0] + arm[0] / w2, fit.centre[1] + arm[1] / w2, fit.centre[2] + arm[2] / w2};
   text += " through " + triple_in_words(through);
-  if (std::fabs(dot(motion.t, motion.w)) > 1e-6 * size * (length(motion.t) + size * fit.radius)) text += ", with a slide along it";
+  if (std::fabs(dot(motion.t, motion.w)) > 1e-6 * size * (length(motion.t) + size * fit.radius))
+    text += ", with a slide along it";
   return text;
 }
 
@@ -158,7 +165,8 @@ RigidFit fit_rigid_motions(const Structure& s, const LocalVectors& local, const 
   for (int which = 0; which < tried; ++which) {
     RigidMotion motion = basic(which, fit.radius);
     std::vector<double> column(n);
-    for (std::size_t i = 0; i < n; ++i) column[i] = rigid_value(s, rows[i], fit.centre, motion) / scale[rows[i]];
+    for (std::size_t i = 0; i < n; ++i)
+      column[i] = rigid_value(s, rows[i], fit.centre, motion) / scale[rows[i]];
     double before = 0;
     for (const double v : column) before += v * v;
     if (before == 0) continue;
@@ -197,7 +205,8 @@ RigidFit fit_rigid_motions(const Structure& s, const LocalVectors& local, const 
   }
   for (std::size_t p = 0; p < m; ++p) {
     for (std::size_t q = 0; q < m; ++q) {
-      for (std::size_t b = 0; b < basis.size(); ++b) gram[p * m + q] += overlap[b * m + p] * overlap[b * m + q];
+      for (std::size_t b = 0; b < basis.size(); ++b)
+        gram[p * m + q] += overlap[b * m + p] * overlap[b * m + q];
     }
   }
   const SmallEigen eigen = small_eigen(gram, static_cast<Index>(m));
@@ -220,7 +229,8 @@ std::vector<std::string> motions_in_words(const RigidFit& fit) {
   if (m == 0) return {};
   std::vector<double> gram(m * m);
   for (std::size_t p = 0; p < m; ++p) {
-    for (std::size_t q = 0; q < m; ++q) gram[p * m + q] = fit.radius * fit.radius * dot(fit.motions[p].w, fit.motions[q].w);
+    for (std::size_t q = 0; q < m; ++q)
+      gram[p * m + q] = fit.radius * fit.radius * dot(fit.motions[p].w, fit.motions[q].w);
   }
   double size = 0;
   for (const RigidMotion& motion : fit.motions) {

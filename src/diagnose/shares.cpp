@@ -17,26 +17,31 @@ std::vector<double> row_shares(const Structure& s, const LocalVectors& motion) {
     };
     for (std::size_t i = 0; i < share.size(); ++i) sum += of(i);
     if (!(sum > 0)) continue;
-    for (std::size_t i = 0; i < share.size(); ++i) share[i] += of(i) / sum / static_cast<double>(motion.count);
+    for (std::size_t i = 0; i < share.size(); ++i)
+      share[i] += of(i) / sum / static_cast<double>(motion.count);
   }
   return share;
 }
 
-std::vector<DofShare> ranked(const Structure& s, const std::vector<Index>& rows, const std::vector<double>& share,
-                             std::size_t most) {
+std::vector<DofShare> ranked(const Structure& s, const std::vector<Index>& rows,
+                             const std::vector<double>& share, std::size_t most) {
   std::vector<std::size_t> order(rows.size());
   std::iota(order.begin(), order.end(), std::size_t{0});
   const auto keep = std::min(most, order.size());
-  std::stable_sort(order.begin(), order.end(), [&](std::size_t a, std::size_t b) { return share[a] > share[b]; });
+  std::stable_sort(order.begin(), order.end(),
+                   [&](std::size_t a, std::size_t b) { return share[a] > share[b]; });
   // Shares that differ in rounding only come in the order of the equations.
   std::size_t shown = keep;
-  while (shown < order.size() && shown < 4 * keep + 64 && share[order[shown]] > share[order[keep - 1]] * (1 - 1e-9)) ++shown;
+  while (shown < order.size() && shown < 4 * keep + 64 &&
+         share[order[shown]] > share[order[keep - 1]] * (1 - 1e-9))
+    ++shown;
   for (std::size_t begin = 0; begin < shown;) {
     std::size_t end = begin + 1;
     while (end < shown && share[order[end]] > share[order[begin]] * (1 - 1e-9)) ++end;
-    std::sort(order.begin() + static_cast<std::ptrdiff_t>(begin), order.begin() + static_cast<std::ptrdiff_t>(end),
-              [&](std::size_t a, std::size_t b) {
-                return s.equation[static_cast<std::size_t>(rows[a])] < s.equation[static_cast<std::size_t>(rows[b])];
+    std::sort(order.begin() + static_cast<std::ptrdiff_t>(begin),
+              order.begin() + static_cast<std::ptrdiff_t>(end), [&](std::size_t a, std::size_t b) {
+                return s.equation[static_cast<std::size_t>(rows[a])] <
+                       s.equation[static_cast<std::size_t>(rows[b])];
               });
     begin = end;
   }
@@ -67,8 +72,9 @@ Index nodes_holding(const LocalVectors& motion, const std::vector<double>& share
   return nodes;
 }
 
-std::vector<std::array<float, 3>> shape_of(const Structure& s, const Buffer<double>& scale, const LocalVectors& motion,
-                                           std::size_t vector, const std::vector<Index>& picture_node,
+std::vector<std::array<float, 3>> shape_of(const Structure& s, const Buffer<double>& scale,
+                                           const LocalVectors& motion, std::size_t vector,
+                                           const std::vector<Index>& picture_node,
                                            std::size_t nodes_in_picture) {
   std::vector<std::array<double, 3>> moved(motion.nodes.size());
   double most = 0;
@@ -76,12 +82,14 @@ std::vector<std::array<float, 3>> shape_of(const Structure& s, const Buffer<doub
     std::array<double, 3> local{};
     for (std::size_t i = motion.first[a]; i < motion.first[a + 1]; ++i) {
       const DofKind kind = s.kind[static_cast<std::size_t>(motion.rows[i])];
-      if (is_translation(kind)) local[static_cast<std::size_t>(kind)] = motion.row(i)[vector] * scale[motion.rows[i]];
+      if (is_translation(kind))
+        local[static_cast<std::size_t>(kind)] = motion.row(i)[vector] * scale[motion.rows[i]];
     }
     const auto* axes = s.axes[static_cast<std::size_t>(motion.nodes[a])];
     for (std::size_t d = 0; d < 3; ++d) {
-      moved[a][d] = axes == nullptr ? local[d]
-                                    : (*axes)[d] * local[0] + (*axes)[3 + d] * local[1] + (*axes)[6 + d] * local[2];
+      moved[a][d] = axes == nullptr
+                        ? local[d]
+                        : (*axes)[d] * local[0] + (*axes)[3 + d] * local[1] + (*axes)[6 + d] * local[2];
     }
     most = std::max(most, std::hypot(moved[a][0], moved[a][1], moved[a][2]));
   }
@@ -90,7 +98,8 @@ std::vector<std::array<float, 3>> shape_of(const Structure& s, const Buffer<doub
   for (std::size_t a = 0; a < motion.nodes.size(); ++a) {
     const Index at = picture_node[static_cast<std::size_t>(motion.nodes[a])];
     if (at < 0) continue;
-    for (std::size_t d = 0; d < 3; ++d) shape[static_cast<std::size_t>(at)][d] = static_cast<float>(moved[a][d] / most);
+    for (std::size_t d = 0; d < 3; ++d)
+      shape[static_cast<std::size_t>(at)][d] = static_cast<float>(moved[a][d] / most);
   }
   return shape;
 }

@@ -19,10 +19,11 @@ std::vector<DofShare> ranked(const Structure& structure, const std::vector<Index
 /// The fewest nodes that hold `part` of the whole.
 Index nodes_holding(const LocalVectors& motion, const std::vector<double>& share, double part);
 
-/// Translations of the nodes in global directions, the largest 1, by the numbers of `picture_node`; empty when there
-/// are none.
+/// Translations of the nodes in global directions, the largest 1, by the numbers of `picture_node`; empty
+/// when there are none.
 std::vector<std::array<float, 3>> shape_of(const Structure& structure, const Buffer<double>& scale,
                                            const LocalVectors& motion, std::size_t vector,
-                                           const std::vector<Index>& picture_node, std::size_t nodes_in_picture);
+                                           const std::vector<Index>& picture_node,
+                                           std::size_t nodes_in_picture);
 
 }  // namespace stanchion

@@ -43,7 +43,8 @@ SmallEigen small_eigen(std::vector<double> matrix, Index size) {
     for (std::size_t p = 0; p < n; ++p) {
       for (std::size_t q = p + 1; q < n; ++q) {
         // Small against both diagonal entries: high relative accuracy where the matrix is graded.
-        const double limit = 1e-17 * std::sqrt(std::fabs(matrix[p * n + p])) * std::sqrt(std::fabs(matrix[q * n + q]));
+        const double limit =
+            1e-17 * std::sqrt(std::fabs(matrix[p * n + p])) * std::sqrt(std::fabs(matrix[q * n + q]));
         if (std::fabs(matrix[p * n + q]) <= limit || matrix[p * n + q] == 0) continue;
         rotate(matrix, vectors, n, p, q);
         turned = true;

@@ -12,8 +12,8 @@ struct SmallEigen {
   std::vector<double> values, vectors;
 };
 
-/// By cyclic Jacobi rotations (Golub and Van Loan, Matrix Computations, 4th ed. 2013, section 8.5), for sizes up to
-/// about a hundred. `matrix`: size x size, symmetric.
+/// By cyclic Jacobi rotations (Golub and Van Loan, Matrix Computations, 4th ed. 2013, section 8.5), for sizes
+/// up to about a hundred. `matrix`: size x size, symmetric.
 SmallEigen small_eigen(std::vector<double> matrix, Index size);
 
 }  // namespace stanchion

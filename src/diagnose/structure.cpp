@@ -18,7 +18,8 @@ DofKind kind_of(std::string_view name) {
 void number_nodes(Structure& s) {
   const DofMap* dofs = s.names->dofs;
   std::vector<Index> position_of(static_cast<std::size_t>(s.rows));
-  for (Index p = 0; p < s.rows; ++p) position_of[static_cast<std::size_t>(s.equation[static_cast<std::size_t>(p)])] = p;
+  for (Index p = 0; p < s.rows; ++p)
+    position_of[static_cast<std::size_t>(s.equation[static_cast<std::size_t>(p)])] = p;
   std::unordered_map<NodeNumber, Index> known;
   for (Index e = 0; e < s.rows; ++e) {  // nodes come in the order of the equations
     const auto p = static_cast<std::size_t>(position_of[static_cast<std::size_t>(e)]);
@@ -44,7 +45,8 @@ void number_nodes(Structure& s) {
   std::vector<Index> next(s.first_row.begin(), s.first_row.end() - 1);
   for (Index e = 0; e < s.rows; ++e) {
     const Index p = position_of[static_cast<std::size_t>(e)];
-    s.rows_of_node[static_cast<std::size_t>(next[static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(p)])]++)] = p;
+    s.rows_of_node[static_cast<std::size_t>(
+        next[static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(p)])]++)] = p;
   }
 }
 
@@ -143,7 +145,8 @@ std::string Structure::dof_name(Index position) const {
 std::string Structure::describe(Index position) const {
   const NodeNumber node = number[static_cast<std::size_t>(node_of[static_cast<std::size_t>(position)])];
   if (node == kNoNode) {
-    return (named ? dof_name(position) + " of " : std::string()) + "equation " + std::to_string(file_equation(position));
+    return (named ? dof_name(position) + " of " : std::string()) + "equation " +
+           std::to_string(file_equation(position));
   }
   return "node " + std::to_string(node) + ", " + dof_name(position);
 }

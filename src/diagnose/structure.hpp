@@ -16,33 +16,38 @@ namespace stanchion {
 
 enum class DofKind : std::uint8_t { kUx, kUy, kUz, kRx, kRy, kRz, kMultiplier, kOther };
 
-inline bool is_translation(DofKind kind) { return kind <= DofKind::kUz; }
-inline bool is_rotation(DofKind kind) { return kind >= DofKind::kRx && kind <= DofKind::kRz; }
+inline bool is_translation(DofKind kind) {
+  return kind <= DofKind::kUz;
+}
+inline bool is_rotation(DofKind kind) {
+  return kind >= DofKind::kRx && kind <= DofKind::kRz;
+}
 
-/// What is known of a model beside its numbers; members may be null. The dof map is numbered like the matrix analysed.
+/// What is known of a model beside its numbers; members may be null. The dof map is numbered like the matrix
+/// analysed.
 struct ModelNames {
   const DofMap* dofs = nullptr;
   const NodeTable* nodes = nullptr;
   const AxesTable* axes = nullptr;
-  const std::vector<Index>* original = nullptr;     ///< equation in the files of every equation; null: the same
+  const std::vector<Index>* original = nullptr;  ///< equation in the files of every equation; null: the same
   const std::vector<Index>* multipliers = nullptr;  ///< equations
 };
 
 /// By position in elimination order. Without a dof map every equation is a node of its own.
 struct Structure {
   Index rows = 0, nodes = 0, parts = 0;
-  bool named = false;   ///< there is a dof map
-  bool placed = false;  ///< most nodes have a place
-  std::vector<Index> node_of;        ///< position -> node
-  std::vector<DofKind> kind;         ///< position
-  std::vector<Index> equation;       ///< position -> equation analysed
-  std::vector<Index> first_row;      ///< node -> start in rows_of_node; nodes + 1
-  std::vector<Index> rows_of_node;   ///< positions, by node
-  std::vector<NodeNumber> number;    ///< node -> number in the model, kNoNode without
+  bool named = false;                        ///< there is a dof map
+  bool placed = false;                       ///< most nodes have a place
+  std::vector<Index> node_of;                ///< position -> node
+  std::vector<DofKind> kind;                 ///< position
+  std::vector<Index> equation;               ///< position -> equation analysed
+  std::vector<Index> first_row;              ///< node -> start in rows_of_node; nodes + 1
+  std::vector<Index> rows_of_node;           ///< positions, by node
+  std::vector<NodeNumber> number;            ///< node -> number in the model, kNoNode without
   std::vector<std::array<double, 3>> place;  ///< node; empty unless placed
   std::vector<char> has_place;
   std::vector<const std::array<double, 9>*> axes;  ///< node; null: global directions
-  std::vector<Index> part_of;        ///< node -> connected part, the part with the lowest equation first
+  std::vector<Index> part_of;  ///< node -> connected part, the part with the lowest equation first
   std::vector<Index> part_rows, part_nodes;
   std::vector<Index> first_of_part;  ///< part -> start in rows_of_part; parts + 1
   std::vector<Index> rows_of_part;   ///< positions, by part, ascending
@@ -52,13 +57,15 @@ struct Structure {
 
   std::span<const Index> rows_of(Index node) const {
     const auto a = static_cast<std::size_t>(node);
-    return std::span(rows_of_node).subspan(static_cast<std::size_t>(first_row[a]),
-                                           static_cast<std::size_t>(first_row[a + 1] - first_row[a]));
+    return std::span(rows_of_node)
+        .subspan(static_cast<std::size_t>(first_row[a]),
+                 static_cast<std::size_t>(first_row[a + 1] - first_row[a]));
   }
   std::span<const Index> part(Index number_of_part) const {
     const auto p = static_cast<std::size_t>(number_of_part);
-    return std::span(rows_of_part).subspan(static_cast<std::size_t>(first_of_part[p]),
-                                           static_cast<std::size_t>(first_of_part[p + 1] - first_of_part[p]));
+    return std::span(rows_of_part)
+        .subspan(static_cast<std::size_t>(first_of_part[p]),
+                 static_cast<std::size_t>(first_of_part[p + 1] - first_of_part[p]));
   }
 
   /// "node 4411, ux", or "equation 17".

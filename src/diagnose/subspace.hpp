@@ -19,12 +19,13 @@ Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool
 /// Rows of each group, for work that keeps to one part of the structure.
 using RowGroup = std::span<const Index>;
 
-/// Gram-Schmidt, twice, over the rows of `group` only. Columns that depend on earlier ones are dropped; what is left
-/// moves to the front, the rest of the group's rows becomes zero. Returns how many are left.
+/// Gram-Schmidt, twice, over the rows of `group` only. Columns that depend on earlier ones are dropped; what
+/// is left moves to the front, the rest of the group's rows becomes zero. Returns how many are left.
 Index orthonormalise(Columns& x, RowGroup group);
 
-/// Ritz values of orthonormal columns x[0..used) with ax = A x over a group; the columns (and ax) are replaced by the
-/// Ritz vectors, ascending in |value| (or in value), and the residual norms ||A x - value x|| come along.
+/// Ritz values of orthonormal columns x[0..used) with ax = A x over a group; the columns (and ax) are
+/// replaced by the Ritz vectors, ascending in |value| (or in value), and the residual norms ||A x - value x||
+/// come along.
 struct Ritz {
   std::vector<double> value, residual;
 };

@@ -15,26 +15,31 @@ std::string listed(const std::vector<std::string>& items) {
   return text;
 }
 
-std::string nodes_in_words(Index nodes) { return nodes == 1 ? "one node" : fmt::format("{} nodes", nodes); }
+std::string nodes_in_words(Index nodes) {
+  return nodes == 1 ? "one node" : fmt::format("{} nodes", nodes);
+}
 
 std::string around(const CauseFacts& f) {
-  return f.nodes == 1 ? f.place.substr(0, f.place.find(',')) : fmt::format("the {} around {}", nodes_in_words(f.nodes), f.place);
+  return f.nodes == 1 ? f.place.substr(0, f.place.find(','))
+                      : fmt::format("the {} around {}", nodes_in_words(f.nodes), f.place);
 }
 
 std::string loose_part(const CauseFacts& f) {
-  const std::string free = f.motions.empty()
-                               ? fmt::format("it can move freely in {} independent ways", f.count)
-                               : fmt::format("it can move freely as one rigid body: {}{}", listed(f.motions),
-                                             static_cast<Index>(f.motions.size()) < f.count
-                                                 ? fmt::format(" and {} more, which are turns or cannot be named without "
-                                                               "coordinates",
-                                                               f.count - static_cast<Index>(f.motions.size()))
-                                                 : "");
+  const std::string free =
+      f.motions.empty()
+          ? fmt::format("it can move freely in {} independent ways", f.count)
+          : fmt::format("it can move freely as one rigid body: {}{}", listed(f.motions),
+                        static_cast<Index>(f.motions.size()) < f.count
+                            ? fmt::format(" and {} more, which are turns or cannot be named without "
+                                          "coordinates",
+                                          f.count - static_cast<Index>(f.motions.size()))
+                            : "");
   std::string text;
   if (f.whole_part && f.only_part) {
     text = fmt::format("The whole model ({}) is not held: {}.", nodes_in_words(f.nodes), free);
   } else if (f.whole_part) {
-    text = fmt::format("{}: this part shares no stiffness with the rest and is not held; {}.", around(f), free);
+    text =
+        fmt::format("{}: this part shares no stiffness with the rest and is not held; {}.", around(f), free);
   } else {
     text = fmt::format("{}: attached to the rest, but not against every motion; {}.", around(f), free);
   }
@@ -46,12 +51,13 @@ std::string loose_part(const CauseFacts& f) {
 std::string mechanism(const CauseFacts& f) {
   std::string text;
   if (f.rigid) {
-    text = fmt::format("{}: this part can turn against the rest without resistance, as on a hinge: {}.", around(f),
-                       listed(f.motions));
+    text = fmt::format("{}: this part can turn against the rest without resistance, as on a hinge: {}.",
+                       around(f), listed(f.motions));
   } else {
-    text = fmt::format("{}: {} no resistance (a hinge, a pinned chain, or a pattern of elements whose shapes "
-                       "do not strain).",
-                       around(f), f.count == 1 ? "a motion meets" : fmt::format("{} independent motions meet", f.count));
+    text = fmt::format(
+        "{}: {} no resistance (a hinge, a pinned chain, or a pattern of elements whose shapes "
+        "do not strain).",
+        around(f), f.count == 1 ? "a motion meets" : fmt::format("{} independent motions meet", f.count));
   }
   if (!f.separated) text += " Several causes may be mixed in here; the nodes are those that move most.";
   if (!f.seam.empty()) text += " " + f.seam + ".";
@@ -70,44 +76,54 @@ std::string sentence_of(const CauseFacts& f) {
       return mechanism(f);
     case Cause::kUnattachedDof:
       return f.count == 1
-                 ? fmt::format("{}: the equation has no stiffness at all; nothing is attached to this dof.", f.place)
-                 : fmt::format("{} equations ({}) at {}, {} among them, have no stiffness at all: nothing is attached to "
-                               "these dofs.",
-                               f.count, f.dof, nodes_in_words(f.nodes), f.place);
+                 ? fmt::format("{}: the equation has no stiffness at all; nothing is attached to this dof.",
+                               f.place)
+                 : fmt::format(
+                       "{} equations ({}) at {}, {} among them, have no stiffness at all: nothing is "
+                       "attached to "
+                       "these dofs.",
+                       f.count, f.dof, nodes_in_words(f.nodes), f.place);
     case Cause::kMissingRotation:
-      return fmt::format("{}: nothing resists a rotation of the node itself, {} in all; the elements there have no "
-                         "stiffness about that axis (no drilling stiffness, or bars only). One cause, however many nodes.",
-                         f.nodes == 1 ? f.place : fmt::format("{}, {} among them", nodes_in_words(f.nodes), f.place),
-                         f.count == 1 ? "one direction" : fmt::format("{} directions", f.count));
+      return fmt::format(
+          "{}: nothing resists a rotation of the node itself, {} in all; the elements there have no "
+          "stiffness about that axis (no drilling stiffness, or bars only). One cause, however many nodes.",
+          f.nodes == 1 ? f.place : fmt::format("{}, {} among them", nodes_in_words(f.nodes), f.place),
+          f.count == 1 ? "one direction" : fmt::format("{} directions", f.count));
     case Cause::kNegativeSpring:
-      return fmt::format("{}: a spring to the ground of stiffness {:.4g} pushes along instead of back. Taking it away takes "
-                         "one negative direction away (checked with the factor).",
-                         f.place, f.stiffness);
+      return fmt::format(
+          "{}: a spring to the ground of stiffness {:.4g} pushes along instead of back. Taking it away takes "
+          "one negative direction away (checked with the factor).",
+          f.place, f.stiffness);
     case Cause::kNegativePatch:
-      return fmt::format("{}: the stiffness of a few neighbouring nodes is negative along this motion, as from an element "
-                         "or spring with a wrong sign, or one that has softened past zero.",
-                         f.place);
+      return fmt::format(
+          "{}: the stiffness of a few neighbouring nodes is negative along this motion, as from an element "
+          "or spring with a wrong sign, or one that has softened past zero.",
+          f.place);
     case Cause::kUnstableWhole:
-      return fmt::format("{} nodes give way together, {} the most: the structure as a whole is unstable in this state{}.",
-                         f.nodes, f.place,
-                         f.stiffness < 0 ? "; K alone resists the motion, what is added to it does not: the state is past a "
-                                           "critical load"
-                                         : ", as past a critical load");
+      return fmt::format(
+          "{} nodes give way together, {} the most: the structure as a whole is unstable in this state{}.",
+          f.nodes, f.place,
+          f.stiffness < 0 ? "; K alone resists the motion, what is added to it does not: the state is past a "
+                            "critical load"
+                          : ", as past a critical load");
     case Cause::kRedundantConstraint:
       return fmt::format("{} constraint{} {} others: the multiplier{} of {} can take any value.", f.count,
-                         f.count == 1 ? "" : "s", f.count == 1 ? "repeats" : "repeat", f.count == 1 ? "" : "s", f.place);
+                         f.count == 1 ? "" : "s", f.count == 1 ? "repeats" : "repeat",
+                         f.count == 1 ? "" : "s", f.place);
     case Cause::kNearMechanism:
-      return fmt::format("{}: positive, but the resistance to this motion is only {:.2g} of what the dofs have by "
-                         "themselves{}.{}",
-                         f.place, f.energy,
-                         f.motions.empty() ? ""
-                                           : fmt::format("; {} move as one rigid body on something very soft ({})",
-                                                         nodes_in_words(f.nodes), listed(f.motions)),
-                         f.seam.empty() ? "" : " " + f.seam + ".");
+      return fmt::format(
+          "{}: positive, but the resistance to this motion is only {:.2g} of what the dofs have by "
+          "themselves{}.{}",
+          f.place, f.energy,
+          f.motions.empty() ? ""
+                            : fmt::format("; {} move as one rigid body on something very soft ({})",
+                                          nodes_in_words(f.nodes), listed(f.motions)),
+          f.seam.empty() ? "" : " " + f.seam + ".");
     case Cause::kOverStiffCoupling:
-      return fmt::format("{}: this coupling is so stiff that about {:.0f} of 16 decimal digits of what its neighbours feel "
-                         "are lost{}.",
-                         f.place, f.digits, f.count == 1 ? "" : fmt::format(" ({} such couplings)", f.count));
+      return fmt::format(
+          "{}: this coupling is so stiff that about {:.0f} of 16 decimal digits of what its neighbours feel "
+          "are lost{}.",
+          f.place, f.digits, f.count == 1 ? "" : fmt::format(" ({} such couplings)", f.count));
     case Cause::kUnresolved:
       break;
   }
@@ -126,10 +142,12 @@ std::string remedy_of(const CauseFacts& f) {
   switch (f.cause) {
     case Cause::kLoosePart:
       if (!f.seam.empty()) return "Merge the coincident nodes, or tie them together.";
-      return f.whole_part && f.only_part ? "Give the model its supports, or hold the equations with --fix."
-                                         : "Connect the part to the structure, or support it against the motions named.";
+      return f.whole_part && f.only_part
+                 ? "Give the model its supports, or hold the equations with --fix."
+                 : "Connect the part to the structure, or support it against the motions named.";
     case Cause::kMechanism:
-      return "Remove a release too many, brace the chain, or hold the motion; check element types and end releases there.";
+      return "Remove a release too many, brace the chain, or hold the motion; check element types and end "
+             "releases there.";
     case Cause::kUnattachedDof:
       return "Attach an element that acts on the dof, or hold it (--fix).";
     case Cause::kMissingRotation:
@@ -137,18 +155,23 @@ std::string remedy_of(const CauseFacts& f) {
     case Cause::kNegativeSpring:
       return "Check the sign and the value of the spring.";
     case Cause::kNegativePatch:
-      return "Check signs, thicknesses and material values of the elements at these nodes; a softening material or a "
+      return "Check signs, thicknesses and material values of the elements at these nodes; a softening "
+             "material or a "
              "stress stiffness may be meant.";
     case Cause::kUnstableWhole:
-      return "Count the critical factors of the load (count --geometric), and look at the load level of this state.";
+      return "Count the critical factors of the load (count --geometric), and look at the load level of this "
+             "state.";
     case Cause::kRedundantConstraint:
-      return "Remove the constraints that repeat others; they do no harm to the structure, but the forces in them are "
+      return "Remove the constraints that repeat others; they do no harm to the structure, but the forces in "
+             "them are "
              "not determined.";
     case Cause::kNearMechanism:
-      return "If the softness is meant, leave it; otherwise connect the part properly. Results along this motion are "
+      return "If the softness is meant, leave it; otherwise connect the part properly. Results along this "
+             "motion are "
              "sensitive.";
     case Cause::kOverStiffCoupling:
-      return "Use a constraint equation in place of a penalty, or lower it to some 1e5 times the stiffness around it "
+      return "Use a constraint equation in place of a penalty, or lower it to some 1e5 times the stiffness "
+             "around it "
              "(common practice, no source).";
     case Cause::kUnresolved:
       break;

@@ -14,10 +14,10 @@ struct CauseFacts {
   Index count = 1, nodes = 0;
   bool whole_part = false, only_part = true;  ///< the part moves as a whole; it is all there is
   bool rigid = false, separated = true, placed = false, by_connectivity = false;
-  std::string place;       ///< "node 12, ux"
-  std::string dof;         ///< "uz", for unattached dofs
+  std::string place;  ///< "node 12, ux"
+  std::string dof;    ///< "uz", for unattached dofs
   std::vector<std::string> motions;
-  std::string seam;        ///< "nodes 12 and 840 lie at one place", when there is such a pair
+  std::string seam;  ///< "nodes 12 and 840 lie at one place", when there is such a pair
   double energy = 0, stiffness = 0, digits = 0;
   std::string unresolved_because;
 };

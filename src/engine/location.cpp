@@ -6,10 +6,12 @@
 namespace stanchion {
 namespace {
 
-void leave_out(const char* code, const char* what, const char* instead, const Status& because, Outcome& outcome) {
+void leave_out(const char* code, const char* what, const char* instead, const Status& because,
+               Outcome& outcome) {
   outcome.warnings.push_back({code,
-                              std::string(what) + " cannot be used and is left out; " + instead + ". Reason: " +
-                                  because.message() + (because.remedy().empty() ? "" : ". Remedy: " + because.remedy()),
+                              std::string(what) + " cannot be used and is left out; " + instead +
+                                  ". Reason: " + because.message() +
+                                  (because.remedy().empty() ? "" : ". Remedy: " + because.remedy()),
                               because.place()});
 }
 
@@ -25,7 +27,8 @@ Result<ModelInput> read_model_to_locate(const Request& request, const RunContext
   Request without = request;
   without.input.dofs.reset();
   outcome = before;
-  leave_out("dof-map-unusable", "the dof map", "equations are named by their numbers", model.status(), outcome);
+  leave_out("dof-map-unusable", "the dof map", "equations are named by their numbers", model.status(),
+            outcome);
   return read_model(without, context, pool, outcome);
 }
 
@@ -34,20 +37,14 @@ LocationFacts collect_location_facts(ModelInput& model, const Request& request, 
   facts.dofs = model.dofs;
   facts.multipliers = model.multipliers;
   facts.original = model.original;
-  if (request.input.nodes) {
-    auto nodes = read_nodes(*request.input.nodes);
-    if (nodes.ok()) {
-      facts.nodes = std::move(*nodes);
-    } else {
-      leave_out("nodes-unusable", "the node table", "places are not known", nodes.status(), outcome);
-    }
-  }
+  facts.nodes = std::move(model.nodes);
   if (request.input.axes) {
     auto axes = read_axes(*request.input.axes);
     if (axes.ok()) {
       facts.axes = std::move(*axes);
     } else {
-      leave_out("axes-unusable", "the table of nodal axes", "global directions are taken", axes.status(), outcome);
+      leave_out("axes-unusable", "the table of nodal axes", "global directions are taken", axes.status(),
+                outcome);
     }
   }
   if (request.input.mass && model.second) {
@@ -60,8 +57,9 @@ LocationFacts collect_location_facts(ModelInput& model, const Request& request, 
   return facts;
 }
 
-Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const LocationFacts& facts, const Request& request,
-                                            Index rightly_negative, ThreadPool& pool, Outcome& outcome) {
+Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const LocationFacts& facts,
+                                            const Request& request, Index rightly_negative, ThreadPool& pool,
+                                            Outcome& outcome) {
   const ShiftedMatrix matrix = pencil.combination(0);
   ShiftedMatrix bare = matrix;  // K alone
   for (std::size_t t = 1; t < bare.coefficients.size(); ++t) bare.coefficients[t] = 0;
@@ -73,8 +71,8 @@ Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const Locati
     auto certified = pencil.certify_keeping(resolution, 0, kept, pool, outcome);
     if (!certified.ok()) return certified.status();
     if (certified->certificate.level == Level::kNone || !kept) return certified;
-    auto diagnosis = diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare, *kept,
-                               *certified, names, rightly_negative, request.locate, pencil.seed()},
+    auto diagnosis = diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare,
+                               *kept, *certified, names, rightly_negative, request.locate, pencil.seed()},
                               pool);
     if (diagnosis.sharper_resolution && round < 2 && !request.resolution) {
       resolution = diagnosis.sharper_resolution;

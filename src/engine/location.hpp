@@ -20,19 +20,20 @@ struct LocationFacts {
   std::optional<MassTotals> mass;
 };
 
-/// read_model, but a dof map that cannot be used is left out with a warning ("dof-map-unusable"): equations are named
-/// by their numbers then.
+/// read_model, but a dof map that cannot be used is left out with a warning ("dof-map-unusable"): equations
+/// are named by their numbers then.
 Result<ModelInput> read_model_to_locate(const Request& request, const RunContext& context, ThreadPool& pool,
                                         Outcome& outcome);
 
-/// Reads the node and axes tables (unusable ones are left out, "nodes-unusable", "axes-unusable"), sums the mass up,
-/// and takes the mass out of `model`.
+/// Reads the table of axes (an unusable one is left out, "axes-unusable"), sums the mass up, and takes it and
+/// the node table out of `model`.
 LocationFacts collect_location_facts(ModelInput& model, const Request& request, Outcome& outcome);
 
-/// Certifies by two offsets and fills outcome.located, unless the inertia is unresolved. `rightly_negative`: negative
-/// directions that multipliers bring along. Where vectors tell apart what the inertia calls zero, it is certified again
-/// with a smaller offset.
-Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const LocationFacts& facts, const Request& request,
-                                            Index rightly_negative, ThreadPool& pool, Outcome& outcome);
+/// Certifies by two offsets and fills outcome.located, unless the inertia is unresolved. `rightly_negative`:
+/// negative directions that multipliers bring along. Where vectors tell apart what the inertia calls zero, it
+/// is certified again with a smaller offset.
+Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const LocationFacts& facts,
+                                            const Request& request, Index rightly_negative, ThreadPool& pool,
+                                            Outcome& outcome);
 
 }  // namespace stanchion

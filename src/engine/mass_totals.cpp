@@ -43,7 +43,8 @@ MassTotals mass_totals(const SymmetricMatrix& mass, const DofMap& dofs, const No
       totals.mass[d] += weight[d][e];
     }
   }
-  const auto most = static_cast<std::size_t>(std::max_element(totals.mass.begin(), totals.mass.end()) - totals.mass.begin());
+  const auto most = static_cast<std::size_t>(std::max_element(totals.mass.begin(), totals.mass.end()) -
+                                             totals.mass.begin());
   if (nodes == nullptr || !(totals.mass[most] > 0)) return totals;
   std::array<double, 3> centre{};
   double placed = 0;

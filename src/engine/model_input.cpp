@@ -6,6 +6,7 @@
 #include "engine/fingerprint.hpp"
 #include "io/equation_list.hpp"
 #include "io/preflight.hpp"
+#include "io/preflight_nodes.hpp"
 #include "io/read_matrix.hpp"
 #include "io/strike.hpp"
 
@@ -148,13 +149,34 @@ class ModelReader {
                                 original()});
     if (!stiffness.ok()) return stiffness.status();
     append(outcome_.warnings, std::move(stiffness->warnings));
+    inspect_names();
     if (!model_.second) return {};
     const MatrixRole role = input_.mass ? MatrixRole::kMass : MatrixRole::kSecond;
     auto second = preflight({*model_.second, input_.mass ? *input_.mass : *input_.geometric, role, dof_map(), nullptr,
                              original()});
     if (!second.ok()) return second.status();
     append(outcome_.warnings, std::move(second->warnings));
+    append(outcome_.warnings, compare_matrices(stiffness->facts, input_.stiffness, second->facts,
+                                               input_.mass ? *input_.mass : *input_.geometric, role, input_.load_sign_minus));
     return {};
+  }
+
+  /// Node tables serve drawings and names only: one that cannot be used is left out with a note.
+  void inspect_names() {
+    if (input_.nodes) {
+      auto nodes = read_nodes(*input_.nodes);
+      if (nodes.ok()) {
+        model_.nodes = std::move(*nodes);
+      } else {
+        outcome_.warnings.push_back({"nodes-unusable",
+                                     "the node table cannot be used and is left out; places are not known. Reason: " +
+                                         nodes.status().message() + ". Remedy: " + nodes.status().remedy(),
+                                     nodes.status().place()});
+      }
+    }
+    if (!model_.dofs) return;
+    if (request_.want_location && input_.dofs) append(outcome_.warnings, inspect_partners(*model_.dofs, *input_.dofs));
+    if (model_.nodes) append(outcome_.warnings, inspect_nodes(model_.stiffness, *model_.dofs, *model_.nodes, *input_.nodes));
   }
 
   const InputRequest& input_;

@@ -7,6 +7,7 @@
 #include "base/threads.hpp"
 #include "engine/pipeline.hpp"
 #include "io/dof_map.hpp"
+#include "io/node_table.hpp"
 #include "sparse/symmetric_matrix.hpp"
 
 namespace stanchion {
@@ -18,6 +19,7 @@ struct ModelInput {
   std::optional<SymmetricMatrix> second;  ///< geometric stiffness or mass
   std::optional<DofMap> dofs;
   std::vector<Index> multipliers;      ///< equations, ascending
+  std::optional<NodeTable> nodes;      ///< of --nodes, if it could be read
   std::vector<Index> original;         ///< equation number in the files of every equation kept; empty: nothing struck
 };
 

@@ -60,9 +60,12 @@ ConnectedParts find_parts(const SymmetricMatrix& matrix, const std::vector<char>
   if (dofs != nullptr && dofs->equations() == matrix.rows) join_nodes(sets, alone, *dofs);
   ConnectedParts parts;
   std::vector<Index> size(static_cast<std::size_t>(matrix.rows), 0);
+  parts.part_of_row.assign(static_cast<std::size_t>(matrix.rows), -1);
   for (Index row = 0; row < matrix.rows; ++row) {
     if (alone[static_cast<std::size_t>(row)] != 0) continue;
-    const Index root = sets.root(row);
+    const Index root = sets.root(row);  // the least row of its part: numbered before the others
+    parts.part_of_row[static_cast<std::size_t>(row)] =
+        root == row ? parts.count : parts.part_of_row[static_cast<std::size_t>(root)];
     if (size[static_cast<std::size_t>(root)]++ > 0) continue;
     ++parts.count;
     if (parts.first_rows.size() < kPartsShown) parts.first_rows.push_back(row);

@@ -12,6 +12,7 @@ struct ConnectedParts {
   Index count = 0;
   std::vector<Index> first_rows;  ///< of the first few parts, ascending
   std::vector<Index> sizes;       ///< rows of each of those
+  std::vector<Index> part_of_row;  ///< number of every row's part, -1 for rows alone
 };
 
 /// Parts of the graph of non-zero entries, without the rows marked in `alone`. With a dof map of matching

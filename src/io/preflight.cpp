@@ -1,7 +1,9 @@
 #include "io/preflight.hpp"
 
 #include <algorithm>
+#include <cmath>
 #include <new>
+#include <unordered_map>
 
 #include "io/connected_parts.hpp"
 #include "io/place.hpp"
@@ -13,6 +15,11 @@ namespace {
 constexpr std::size_t kPlacesShown = 5;
 /// Above this ratio double precision cannot hold the soft and the stiff end of one sum together.
 constexpr double kWideSpread = 1e12;
+/// A diagonal entry so many times those of its neighbours holds a dof by force.
+constexpr double kPenalty = 1e9;
+/// Medians of the diagonals of two parts this many decades apart speak of different units.
+constexpr double kUnitDecades = 5;
+constexpr Index kLeastPart = 12;  ///< rows of a part that is compared with others
 
 /// Counts rows of one kind and keeps the first few.
 struct Finding {
@@ -32,8 +39,10 @@ class Inspector {
     look_at_rows();
     classify();
     report_rows();
+    report_penalties();
     report_spread();
     report_parts();
+    report_sign();
     return std::move(result_);
   }
 
@@ -73,6 +82,8 @@ class Inspector {
       } else if (coupled_[at] == 0 && d == 1) {
         identity_.add(row);
         alone_[at] = 1;
+      } else if (coupled_[at] == 0 && d > 0) {
+        ++stamped_[d];
       } else if (d == 0 && multiplier[at] == 0) {
         zero_.add(row);
       } else if (d < 0 && multiplier[at] == 0) {
@@ -86,6 +97,16 @@ class Inspector {
     facts.identity_rows = identity_.count;
     facts.zero_diagonals = zero_.count;
     facts.negative_diagonals = negative_.count;
+    std::vector<double> sizes;
+    sizes.reserve(diagonal_.size());
+    for (const double d : diagonal_) {
+      if (d != 0) sizes.push_back(std::fabs(d));
+      facts.positive_diagonals += d > 0 ? 1 : 0;
+    }
+    if (sizes.empty()) return;
+    const auto middle = sizes.begin() + static_cast<std::ptrdiff_t>(sizes.size() / 2);
+    std::nth_element(sizes.begin(), middle, sizes.end());
+    facts.median_diagonal = *middle;
   }
 
   Index number(Index row) const {
@@ -137,6 +158,50 @@ class Inspector {
                 : "The matrix is not positive definite: check the sign of the element or spring there");
   }
 
+  /// Held dofs written as the same number on a diagonal of its own, or as one that drowns its neighbours.
+  void report_penalties() {
+    if (subject_.role != MatrixRole::kStiffness) return;
+    Finding same;
+    for (Index row = 0; row < matrix_.rows; ++row) {
+      const auto at = static_cast<std::size_t>(row);
+      if (coupled_[at] != 0 || diagonal_[at] <= 0 || diagonal_[at] == 1) continue;
+      if (stamped_[diagonal_[at]] > 1) same.add(row);
+    }
+    report("stamped-rows", same, "row holds nothing but a diagonal entry", "rows hold nothing but a diagonal entry that "
+           "others repeat", "Held dofs are sometimes written so; each counts as one positive eigenvalue. Strike them out "
+           "with --fix");
+    std::vector<double> beside(diagonal_.size(), 0.0);
+    for (Index column = 0; column < matrix_.rows; ++column) {
+      for (Offset k = matrix_.column_start[column]; k < matrix_.column_start[Offset{column} + 1]; ++k) {
+        const Index row = matrix_.row[k];
+        if (row == column || matrix_.value[k] == 0) continue;
+        double &own = beside[static_cast<std::size_t>(column)], &other = beside[static_cast<std::size_t>(row)];
+        own = std::max(own, diagonal_[static_cast<std::size_t>(row)]);
+        other = std::max(other, diagonal_[static_cast<std::size_t>(column)]);
+      }
+    }
+    Finding penalties;
+    for (Index row = 0; row < matrix_.rows; ++row) {
+      const auto at = static_cast<std::size_t>(row);
+      if (beside[at] > 0 && diagonal_[at] > kPenalty * beside[at]) penalties.add(row);
+    }
+    report("penalty-rows", penalties, "row has a diagonal entry a thousand million times those it is coupled with",
+           "rows have diagonal entries a thousand million times those they are coupled with",
+           "A dof held or tied by a penalty? It costs digits: strike it out (--fix) or use a constraint equation");
+  }
+
+  /// Most of a stiffness matrix's diagonal is positive, whatever the structure.
+  void report_sign() {
+    const PreflightFacts& facts = result_.facts;
+    if (subject_.role != MatrixRole::kStiffness || facts.negative_diagonals <= facts.positive_diagonals) return;
+    result_.warnings.push_back({"sign-of-stiffness",
+                                "more diagonal entries are negative (" + std::to_string(facts.negative_diagonals) +
+                                    ") than positive (" + std::to_string(facts.positive_diagonals) +
+                                    "). Written with the other sign, or a geometric stiffness in place of K? Check which "
+                                    "file was given, and its sign",
+                                subject_.path});
+  }
+
   void report_spread() {
     const PreflightFacts& facts = result_.facts;
     if (subject_.role != MatrixRole::kStiffness || facts.least_diagonal <= 0) return;
@@ -156,6 +221,7 @@ class Inspector {
     const ConnectedParts parts = find_parts(matrix_, alone_, subject_.dofs);
     result_.facts.parts = parts.count;
     if (parts.count <= 1) return;
+    report_units(parts);
     std::string text;
     for (std::size_t i = 0; i < parts.first_rows.size(); ++i) {
       text += (i == 0 ? "" : "; ") + std::to_string(parts.sizes[i]) +
@@ -175,12 +241,45 @@ class Inspector {
          at_row(subject_.path, number(parts.first_rows[1]))});
   }
 
+  /// Parts whose stiffnesses lie many decades apart were likely written in different units.
+  void report_units(const ConnectedParts& parts) {
+    std::vector<std::vector<double>> of_part(static_cast<std::size_t>(parts.count));
+    for (Index row = 0; row < matrix_.rows; ++row) {
+      const auto at = static_cast<std::size_t>(row);
+      if (parts.part_of_row[at] < 0 || diagonal_[at] <= 0) continue;
+      const bool named = subject_.dofs != nullptr && subject_.dofs->equations() == matrix_.rows;
+      if (named && subject_.dofs->dof(row)[0] != 'u') continue;  // moments have another unit by right
+      of_part[static_cast<std::size_t>(parts.part_of_row[at])].push_back(diagonal_[at]);
+    }
+    double least = 0, most = 0;
+    std::size_t soft = 0, stiff = 0;
+    for (std::size_t part = 0; part < of_part.size(); ++part) {
+      auto& values = of_part[part];
+      if (values.size() < static_cast<std::size_t>(kLeastPart)) continue;
+      const auto middle = values.begin() + static_cast<std::ptrdiff_t>(values.size() / 2);
+      std::nth_element(values.begin(), middle, values.end());
+      if (least == 0 || *middle < least) least = *middle, soft = part;
+      if (*middle > most) most = *middle, stiff = part;
+    }
+    if (least <= 0 || most < std::pow(10.0, kUnitDecades) * least) return;
+    const auto first_of = [&](std::size_t part) {
+      const auto at = std::find(parts.part_of_row.begin(), parts.part_of_row.end(), static_cast<Index>(part));
+      return static_cast<Index>(at - parts.part_of_row.begin());
+    };
+    result_.warnings.push_back({"units-by-part",
+                                "the part from " + name(first_of(soft)) + " has diagonal entries about " + number_text(least) +
+                                    ", the part from " + name(first_of(stiff)) + " about " + number_text(most) +
+                                    ". Parts written in different units? Check them before they are tied together",
+                                at_row(subject_.path, number(first_of(soft)))});
+  }
+
   const PreflightSubject& subject_;
   const SymmetricMatrix& matrix_;
   Preflight result_;
   std::vector<double> diagonal_;
   std::vector<char> coupled_, alone_;
   Finding empty_, identity_, zero_, negative_;
+  std::unordered_map<double, Index> stamped_;  ///< value of an uncoupled diagonal entry -> rows that have it
   Index least_row_ = 0, greatest_row_ = 0;
 };
 

@@ -27,6 +27,8 @@ struct PreflightFacts {
   Offset empty_rows = 0, zero_diagonals = 0, negative_diagonals = 0, identity_rows = 0;
   double least_diagonal = 0, greatest_diagonal = 0;  ///< of the positive ones; 0 when there are none
   Index parts = 0;                                   ///< connected parts, without empty and identity rows
+  Offset positive_diagonals = 0;
+  double median_diagonal = 0;                        ///< of the absolute values that are not zero
 };
 
 struct Preflight {
@@ -35,10 +37,15 @@ struct Preflight {
 };
 
 /// Findings, each with its remedy in the message: "empty-rows", "zero-diagonal", "negative-diagonal",
-/// "identity-rows", "diagonal-spread", "disconnected-parts". A second matrix may rightly be empty or negative
-/// in places: for it only what cannot be meant is reported. Cost: two passes over the entries, serial.
+/// "identity-rows", "stamped-rows", "penalty-rows", "diagonal-spread", "disconnected-parts", "units-by-part",
+/// "sign-of-stiffness". A second matrix may rightly be empty or negative
+/// in places: for it only what cannot be meant is reported. Cost: three passes over the entries, serial.
 /// With `dofs` the dofs of one node count as connected.
 Result<Preflight> preflight(const PreflightSubject& subject);
+
+/// What two matrices say together: "swapped-matrices", "sign-of-geometric". `minus`: G was written for K - f G.
+Warnings compare_matrices(const PreflightFacts& stiffness, const std::string& stiffness_path, const PreflightFacts& second,
+                          const std::string& second_path, MatrixRole role, bool minus);
 
 /// kBadInput "dof-map-size" unless the map has exactly one line an equation.
 Status check_dof_map_size(const DofMap& dofs, const std::string& dofs_path, const SymmetricMatrix& matrix,

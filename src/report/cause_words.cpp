@@ -38,7 +38,9 @@ const char* title_of(Cause cause) {
 
 std::string how_many(const Direction& direction) {
   if (direction.cause == Cause::kOverStiffCoupling) return counted(direction.count, "coupling");
-  const char* kind = direction.sign < 0 ? "negative direction" : direction.sign == 0 ? "zero direction" : "weak direction";
+  const char* kind = direction.sign < 0    ? "negative direction"
+                     : direction.sign == 0 ? "zero direction"
+                                           : "weak direction";
   return counted(direction.count, kind);
 }
 
@@ -55,18 +57,22 @@ std::string percent(double share) {
 
 std::string location_headline(const LocateOutcome& located) {
   if (located.directions.empty() && located.not_located == 0) {
-    return fmt::format("No cause was found: no negative, no zero, and no weak direction that stands apart (energy ratio "
-                       "below {}).",
-                       exact(located.weak_below));
+    return fmt::format(
+        "No cause was found: no negative, no zero, and no weak direction that stands apart (energy ratio "
+        "below {}).",
+        exact(located.weak_below));
   }
-  std::string text = located.directions.size() == 1 ? "One entry" : fmt::format("{} entries", located.directions.size());
+  std::string text =
+      located.directions.size() == 1 ? "One entry" : fmt::format("{} entries", located.directions.size());
   Index weak = 0, couplings = 0;
   for (const Direction& direction : located.directions) {
-    if (direction.sign == 1) (direction.cause == Cause::kOverStiffCoupling ? couplings : weak) += direction.count;
+    if (direction.sign == 1)
+      (direction.cause == Cause::kOverStiffCoupling ? couplings : weak) += direction.count;
   }
   std::string kinds;
-  for (const auto& [count, noun] : {std::pair{located.negative, "negative direction"}, std::pair{located.zero, "zero direction"},
-                                    std::pair{weak, "weak direction"}, std::pair{couplings, "over-stiff coupling"}}) {
+  for (const auto& [count, noun] :
+       {std::pair{located.negative, "negative direction"}, std::pair{located.zero, "zero direction"},
+        std::pair{weak, "weak direction"}, std::pair{couplings, "over-stiff coupling"}}) {
     if (count > 0) kinds += (kinds.empty() ? "" : ", ") + counted(count, noun);
   }
   text += " for " + kinds;

@@ -20,7 +20,8 @@ std::string field(const std::string& text) {
 
 class Table {
  public:
-  void row(const std::string& table, const std::string& item, const std::string& quantity, const std::string& value) {
+  void row(const std::string& table, const std::string& item, const std::string& quantity,
+           const std::string& value) {
     text_ += fmt::format("{},{},{},{}\n", field(table), field(item), field(quantity), field(value));
   }
   void row(const std::string& table, const std::string& item, const std::string& quantity, double value) {
@@ -45,7 +46,9 @@ void add_check(Table& table, const CheckOutcome& check) {
   if (check.certificate.resolution) table.row("check", "K", "resolution", *check.certificate.resolution);
 }
 
-std::string name_of_dof(const DofShare& d) { return d.node ? fmt::format("{} {}", *d.node, d.dof) : d.dof; }
+std::string name_of_dof(const DofShare& d) {
+  return d.node ? fmt::format("{} {}", *d.node, d.dof) : d.dof;
+}
 
 void add_location(Table& table, const LocateOutcome& located) {
   for (std::size_t k = 0; k < located.directions.size(); ++k) {
@@ -70,8 +73,10 @@ void add_location(Table& table, const LocateOutcome& located) {
   if (!located.accuracy) return;
   table.row("accuracy", "all", "typical", located.accuracy->typical);
   table.row("accuracy", "all", "largest", located.accuracy->largest);
-  for (const auto& [from, count] : located.accuracy->histogram) table.row("accuracy", "histogram", exact(from), count);
-  for (const DofShare& worst : located.accuracy->worst) table.row("accuracy", "worst", name_of_dof(worst), worst.share);
+  for (const auto& [from, count] : located.accuracy->histogram)
+    table.row("accuracy", "histogram", exact(from), count);
+  for (const DofShare& worst : located.accuracy->worst)
+    table.row("accuracy", "worst", name_of_dof(worst), worst.share);
 }
 
 }  // namespace
@@ -116,7 +121,8 @@ std::string to_csv(const Outcome& outcome) {
     table.row("forecast", "factor", "peak_bytes_solve", std::to_string(outcome.forecast->peak_bytes_solve));
   }
   if (outcome.located) add_location(table, *outcome.located);
-  for (const Warning& warning : outcome.warnings) table.row("warnings", warning.code, warning.place, warning.message);
+  for (const Warning& warning : outcome.warnings)
+    table.row("warnings", warning.code, warning.place, warning.message);
   return std::move(table).text();
 }
 

@@ -19,11 +19,22 @@ namespace {
 /// A beam on two posts that stands level, one that has come off, one that is not drawn to its end.
 std::string verdict_mark(bool good, bool unresolved) {
   const char* beam = unresolved ? "M6 20h22M36 20h4M46 20h4M56 20h4" : good ? "M6 20h54" : "M6 32L60 10";
-  const char* posts = unresolved ? "M16 22v34M50 30v4M50 42v4M50 52v4" : good ? "M16 22v34M50 22v34" : "M16 34v22M50 24v32";
-  return fmt::format("<svg class=\"{}\" viewBox=\"0 0 66 66\" role=\"img\" aria-label=\"{}\"><path d=\"{}\" stroke=\"currentColor\" "
-                     "stroke-width=\"6\" stroke-linecap=\"round\" fill=\"none\"/><path d=\"{}M4 60h58\" stroke=\"currentColor\" "
-                     "stroke-width=\"3\" stroke-linecap=\"round\" fill=\"none\"/></svg>",
-                     unresolved ? "open" : good ? "clear" : "heed", unresolved ? "unresolved" : good ? "good" : "not good", beam, posts);
+  const char* posts = unresolved ? "M16 22v34M50 30v4M50 42v4M50 52v4"
+                      : good     ? "M16 22v34M50 22v34"
+                                 : "M16 34v22M50 24v32";
+  return fmt::format(
+      "<svg class=\"{}\" viewBox=\"0 0 66 66\" role=\"img\" aria-label=\"{}\"><path d=\"{}\" "
+      "stroke=\"currentColor\" "
+      "stroke-width=\"6\" stroke-linecap=\"round\" fill=\"none\"/><path d=\"{}M4 60h58\" "
+      "stroke=\"currentColor\" "
+      "stroke-width=\"3\" stroke-linecap=\"round\" fill=\"none\"/></svg>",
+      unresolved ? "open"
+      : good     ? "clear"
+                 : "heed",
+      unresolved ? "unresolved"
+      : good     ? "good"
+                 : "not good",
+      beam, posts);
 }
 
 /// Level, risk and digits in one sentence.
@@ -51,9 +62,10 @@ std::string standing(const Outcome& outcome) {
     text = level == Level::kProved        ? "Backed by proof throughout"
            : level == Level::kStatistical ? "Backed by statistics where not by proof"
                                           : "Not certified in every part";
-    text += outcome.risk > 0 ? fmt::format("; the risk that any statement is wrong is at most {} (allowed: {})", rounded(outcome.risk),
-                                           rounded(outcome.risk_allowed))
-                             : "; no statement rests on chance";
+    text += outcome.risk > 0
+                ? fmt::format("; the risk that any statement is wrong is at most {} (allowed: {})",
+                              rounded(outcome.risk), rounded(outcome.risk_allowed))
+                : "; no statement rests on chance";
   }
   if (outcome.forecast && !any) return "Nothing was factored: figures from the pattern alone.";
   text += text.empty() ? "The numbers of the input" : "; the numbers of the input";
@@ -63,13 +75,17 @@ std::string standing(const Outcome& outcome) {
 
 std::string question_in_words(const Outcome& outcome) {
   const auto has = [&](const char* role) {
-    return std::any_of(outcome.inputs.begin(), outcome.inputs.end(), [&](const InputRecord& input) { return input.role == role; });
+    return std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
+                       [&](const InputRecord& input) { return input.role == role; });
   };
   const std::string& c = outcome.command;
-  if (c == "check") return outcome.located ? "Is K positive definite? If not: where, and why?" : "Is K positive definite?";
+  if (c == "check")
+    return outcome.located ? "Is K positive definite? If not: where, and why?" : "Is K positive definite?";
   if (c == "locate") return "Which nodes carry the zero, negative and weak directions of K, and why?";
   if (c == "forecast") return "What will a factorization of K take?";
-  const std::string subject = has("geometric") ? "critical factors of the pencil of K and G" : has("mass") ? "eigenvalues of K - s M" : "eigenvalues of K";
+  const std::string subject = has("geometric") ? "critical factors of the pencil of K and G"
+                              : has("mass")    ? "eigenvalues of K - s M"
+                                               : "eigenvalues of K";
   if (c == "count") return "How many " + subject + " lie below the values asked?";
   if (c == "sweep") return "How does the number of " + subject + " grow over the range?";
   if (c == "bracket") return "Between which bounds do the " + subject + " lie?";
@@ -89,17 +105,21 @@ std::string question_to_html(const Outcome& outcome) {
     command += " " + (plain ? argument : "'" + argument + "'");
   }
   row("as typed", fmt::format("<code>{}</code>", escaped(command)));
-  const bool geometric = std::any_of(outcome.inputs.begin(), outcome.inputs.end(), [](const InputRecord& i) { return i.role == "geometric"; });
+  const bool geometric = std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
+                                     [](const InputRecord& i) { return i.role == "geometric"; });
   if (geometric) {
-    const bool minus = std::find(outcome.arguments.begin(), outcome.arguments.end(), "minus") != outcome.arguments.end();
+    const bool minus =
+        std::find(outcome.arguments.begin(), outcome.arguments.end(), "minus") != outcome.arguments.end();
     row("sign of G", minus ? "K - f G: the file was written for the minus sign" : "K + f G");
   }
   if (outcome.count && !outcome.count->counts.empty()) {
-    const auto [low, high] = std::minmax_element(outcome.count->counts.begin(), outcome.count->counts.end(),
-                                                 [](const ShiftCount& a, const ShiftCount& b) { return a.shift < b.shift; });
+    const auto [low, high] =
+        std::minmax_element(outcome.count->counts.begin(), outcome.count->counts.end(),
+                            [](const ShiftCount& a, const ShiftCount& b) { return a.shift < b.shift; });
     row("range", fmt::format("from {} to {}", exact(low->shift), exact(high->shift)));
   }
-  row("equations", fmt::format("{} in the file, {} struck out, {} analysed", grouped(Offset{outcome.rows_analysed} + outcome.rows_struck),
+  row("equations", fmt::format("{} in the file, {} struck out, {} analysed",
+                               grouped(Offset{outcome.rows_analysed} + outcome.rows_struck),
                                grouped(outcome.rows_struck), grouped(outcome.rows_analysed)));
   if (outcome.check && outcome.check->constrained)
     row("constrained", fmt::format("by {}", counted(outcome.check->constrained->multipliers, "multiplier")));
@@ -111,34 +131,51 @@ std::string staircase(const Outcome& outcome) {
   if (outcome.sweep) return staircase_svg(outcome, false);
   if (!outcome.count || outcome.count->counts.size() < 2) return "";
   std::vector<std::pair<double, Index>> steps;
-  for (const ShiftCount& count : outcome.count->counts) steps.emplace_back(count.shift, count.below.value_or(count.below_range.first));
+  for (const ShiftCount& count : outcome.count->counts)
+    steps.emplace_back(count.shift, count.below.value_or(count.below_range.first));
   std::sort(steps.begin(), steps.end());
   constexpr double kWidth = 640, kHeight = 200, kLeft = 46, kBase = 164, kTop = 22;
   const double low = std::min(0.0, steps.front().first), high = std::max(0.0, steps.back().first);
   Index most = 1;
   for (const auto& step : steps) most = std::max(most, step.second);
-  const auto x = [&](double s) { return kLeft + (kWidth - 2 * kLeft) * (high > low ? (s - low) / (high - low) : 0.5); };
+  const auto x = [&](double s) {
+    return kLeft + (kWidth - 2 * kLeft) * (high > low ? (s - low) / (high - low) : 0.5);
+  };
   const auto y = [&](Index n) { return kBase - (kBase - kTop) * n / most; };
-  std::string svg = fmt::format("<svg class=\"chart\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Counts over shifts\">\n", kWidth, kHeight);
+  std::string svg = fmt::format(
+      "<svg class=\"chart\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Counts over shifts\">\n",
+      kWidth, kHeight);
   svg += fmt::format("<path class=\"c-axis\" d=\"M{:.0f} {:.0f}H{:.0f}\"/>\n", kLeft, kBase, kWidth - kLeft);
   double label_x = -100;
   for (const auto& [shift, count] : steps) {
-    svg += fmt::format("<path class=\"c-step\" d=\"M{0:.1f} {1:.1f}V{2:.1f}\"/><circle class=\"c-bar\" cx=\"{0:.1f}\" cy=\"{2:.1f}\" r=\"4\"/>\n", x(shift), kBase, y(count));
+    svg += fmt::format(
+        "<path class=\"c-step\" d=\"M{0:.1f} {1:.1f}V{2:.1f}\"/><circle class=\"c-bar\" cx=\"{0:.1f}\" "
+        "cy=\"{2:.1f}\" r=\"4\"/>\n",
+        x(shift), kBase, y(count));
     if (x(shift) - label_x < 34) continue;
     label_x = x(shift);
-    svg += fmt::format("<text class=\"c-small\" x=\"{0:.1f}\" y=\"{1:.1f}\" text-anchor=\"middle\">{2}</text><text class=\"c-small\" x=\"{0:.1f}\" "
-                       "y=\"{3:.0f}\" text-anchor=\"middle\">{4:.4g}</text>\n",
-                       x(shift), y(count) - 8, count, kBase + 16, shift);
+    svg += fmt::format(
+        "<text class=\"c-small\" x=\"{0:.1f}\" y=\"{1:.1f}\" text-anchor=\"middle\">{2}</text><text "
+        "class=\"c-small\" x=\"{0:.1f}\" "
+        "y=\"{3:.0f}\" text-anchor=\"middle\">{4:.4g}</text>\n",
+        x(shift), y(count) - 8, count, kBase + 16, shift);
   }
-  return svg + fmt::format("<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">shift; above it the count</text></svg>\n", kWidth / 2, kHeight - 4);
+  return svg + fmt::format(
+                   "<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">shift; above it "
+                   "the count</text></svg>\n",
+                   kWidth / 2, kHeight - 4);
 }
 
 std::string inputs_to_html(const Outcome& outcome) {
-  std::string html = "<table><tr><th>input</th><th>file</th><th class=\"right\">equations</th><th class=\"right\">entries</th><th>SHA-256</th></tr>\n";
+  std::string html =
+      "<table><tr><th>input</th><th>file</th><th class=\"right\">equations</th><th "
+      "class=\"right\">entries</th><th>SHA-256</th></tr>\n";
   for (const InputRecord& input : outcome.inputs) {
-    html += fmt::format("<tr><td>{}{}</td><td>{}</td><td class=\"right\">{}</td><td class=\"right\">{}</td><td class=\"digest\">{}</td></tr>\n",
-                        escaped(input.role), input.factor ? ", times " + exact(*input.factor) : "", escaped(input.path), grouped(input.rows),
-                        grouped(input.entries), escaped(input.sha256));
+    html += fmt::format(
+        "<tr><td>{}{}</td><td>{}</td><td class=\"right\">{}</td><td class=\"right\">{}</td><td "
+        "class=\"digest\">{}</td></tr>\n",
+        escaped(input.role), input.factor ? ", times " + exact(*input.factor) : "", escaped(input.path),
+        grouped(input.rows), grouped(input.entries), escaped(input.sha256));
   }
   html += "</table>\n";
   Page page;
@@ -154,14 +191,17 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   const auto& blocks = answer.blocks();
   std::size_t lead = 0;  // the sentences that open the answer
   while (lead < blocks.size() && blocks[lead].kind == Page::Kind::kSentence) ++lead;
-  const std::string title = outcome.title.value_or(outcome.inputs.empty() ? std::string("Result") : outcome.inputs.front().path);
+  const std::string title =
+      outcome.title.value_or(outcome.inputs.empty() ? std::string("Result") : outcome.inputs.front().path);
 
-  std::string html = "<!DOCTYPE html>\n<html lang=\"en\"><head><meta charset=\"utf-8\">\n"
-                     "<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n";
-  html += fmt::format("<title>{}</title>\n<style>{}</style></head>\n<body><main>\n", escaped(title), kHtmlStyle);
+  std::string html =
+      "<!DOCTYPE html>\n<html lang=\"en\"><head><meta charset=\"utf-8\">\n"
+      "<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n";
+  html +=
+      fmt::format("<title>{}</title>\n<style>{}</style></head>\n<body><main>\n", escaped(title), kHtmlStyle);
   html += fmt::format("<header class=\"top\"><h1>{}</h1><p>{}{} {}, {}</p></header>\n", escaped(title),
-                      outcome.reference ? "Reference: " + escaped(*outcome.reference) + " · " : "", program_name(), program_version(),
-                      escaped(outcome.command));
+                      outcome.reference ? "Reference: " + escaped(*outcome.reference) + " · " : "",
+                      program_name(), program_version(), escaped(outcome.command));
   html += "<div class=\"verdict\">" + verdict_mark(good, unresolved) + "<div>\n";
   for (std::size_t k = 0; k < lead; ++k) {
     html += fmt::format("<p{}>{}</p>\n", k == 0 ? " class=\"lead\"" : "", escaped(blocks[k].text));
@@ -193,8 +233,10 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   std::string open;
   for (const std::string& sentence : outcome.not_checked) open += "<li>" + escaped(sentence) + "</li>\n";
   html += band("Not checked", open.empty() ? open : "<ul>\n" + open + "</ul>\n");
-  html += fmt::format("<footer>Made by {} {}. This page stands alone: it loads nothing and runs nothing.</footer>\n</main></body></html>\n",
-                      program_name(), program_version());
+  html += fmt::format(
+      "<footer>Made by {} {}. This page stands alone: it loads nothing and runs "
+      "nothing.</footer>\n</main></body></html>\n",
+      program_name(), program_version());
   return html;
 }
 

@@ -15,15 +15,17 @@ namespace {
 
 constexpr std::size_t kNodesShown = 8, kMarks = 2, kPartsShown = 12;
 
-std::string tag(const char* name, const std::string& text) { return fmt::format("<{0}>{1}</{0}>", name, escaped(text)); }
+std::string tag(const char* name, const std::string& text) {
+  return fmt::format("<{0}>{1}</{0}>", name, escaped(text));
+}
 
 std::string table_of(const Page::Block& block) {
   std::string html = "<table>\n";
   for (std::size_t r = 0; r < block.cells.size(); ++r) {
     html += "<tr>";
     for (std::size_t c = 0; c < block.cells[r].size(); ++c) {
-      html += fmt::format("<{0}{1}>{2}</{0}>", r == 0 ? "th" : "td", c < block.to_the_right ? " class=\"right\"" : "",
-                          escaped(block.cells[r][c]));
+      html += fmt::format("<{0}{1}>{2}</{0}>", r == 0 ? "th" : "td",
+                          c < block.to_the_right ? " class=\"right\"" : "", escaped(block.cells[r][c]));
     }
     html += "</tr>\n";
   }
@@ -37,14 +39,18 @@ std::string ranked_table(const Direction& direction) {
   std::string html = "<table><tr><th>node</th><th>dof</th><th>share</th><th></th></tr>\n";
   for (std::size_t k = 0; k < std::min(kNodesShown, direction.nodes.size()); ++k) {
     const DofShare& d = direction.nodes[k];
-    html += fmt::format("<tr><td>{}</td><td>{}</td><td class=\"bar\"><i style=\"width:{:.1f}%\"></i></td><td "
-                        "class=\"right\">{}</td></tr>\n",
-                        d.node ? std::to_string(*d.node) : "-", escaped(d.dof), most > 0 ? 100 * d.share / most : 0,
-                        percent(d.share));
+    html += fmt::format(
+        "<tr><td>{}</td><td>{}</td><td class=\"bar\"><i style=\"width:{:.1f}%\"></i></td><td "
+        "class=\"right\">{}</td></tr>\n",
+        d.node ? std::to_string(*d.node) : "-", escaped(d.dof), most > 0 ? 100 * d.share / most : 0,
+        percent(d.share));
   }
   html += "</table>";
-  const Offset rest = Offset{direction.moving_rows} - static_cast<Offset>(std::min(kNodesShown, direction.nodes.size()));
-  if (rest > 0) html += fmt::format("<p>and {} more equations at {}</p>", grouped(rest), counted(direction.moving_nodes, "node"));
+  const Offset rest =
+      Offset{direction.moving_rows} - static_cast<Offset>(std::min(kNodesShown, direction.nodes.size()));
+  if (rest > 0)
+    html += fmt::format("<p>and {} more equations at {}</p>", grouped(rest),
+                        counted(direction.moving_nodes, "node"));
   return html;
 }
 
@@ -66,39 +72,46 @@ std::string figure_of(const LocateOutcome& located, const Direction& direction) 
   const auto marks = marks_of(located, direction);
   if (located.picture.place.empty() || (marks.empty() && direction.shape.empty())) return "";
   const ModelDrawing drawing = draw_model(located.picture, direction.shape, marks);
-  std::string caption = direction.shape.empty()
-                            ? "Rings mark the nodes ranked first."
-                            : fmt::format("Blue dots: what moves. Orange, dashed, with arrows: where it goes; the largest motion "
-                                          "is drawn as {:.0f} % of the model's size, its true size is open. Rings mark the nodes "
-                                          "ranked first.",
-                                          100 * drawing.exaggeration);
+  std::string caption =
+      direction.shape.empty()
+          ? "Rings mark the nodes ranked first."
+          : fmt::format(
+                "Blue dots: what moves. Orange, dashed, with arrows: where it goes; the largest motion "
+                "is drawn as {:.0f} % of the model's size, its true size is open. Rings mark the nodes "
+                "ranked first.",
+                100 * drawing.exaggeration);
   const auto& t = drawing.view.toward;
   caption += fmt::format(" Seen from ({:.2f}, {:.2f}, {:.2f}).", t[0], t[1], t[2]);
   if (drawing.left_out > 0 && located.picture.links.empty())
-    caption += fmt::format(" Of {} nodes one in every few pixels is drawn.", grouped(static_cast<Offset>(located.picture.node.size())));
+    caption += fmt::format(" Of {} nodes one in every few pixels is drawn.",
+                           grouped(static_cast<Offset>(located.picture.node.size())));
   if (!drawing.close_up.empty())
-    caption += fmt::format(" Right: close up on node {}, with node numbers.", located.picture.node[marks.front().node]);
-  return fmt::format("<figure><div class=\"plates\">{}{}</div><figcaption>{}</figcaption></figure>\n", drawing.overview,
-                     drawing.close_up, escaped(caption));
+    caption += fmt::format(" Right: close up on node {}, with node numbers.",
+                           located.picture.node[marks.front().node]);
+  return fmt::format("<figure><div class=\"plates\">{}{}</div><figcaption>{}</figcaption></figure>\n",
+                     drawing.overview, drawing.close_up, escaped(caption));
 }
 
-/// Shape beside colour: a negative direction points down, a zero one is level, a weak one leans, an open one is hollow.
+/// Shape beside colour: a negative direction points down, a zero one is level, a weak one leans, an open one
+/// is hollow.
 std::string sign_mark(const Direction& direction) {
   const char* path = direction.cause == Cause::kUnresolved ? "M4 4h12v12h-12z"
-                     : direction.sign < 0                   ? "M3 5h14l-7 11z"
-                     : direction.sign == 0                  ? "M2 10h16M2 6h16"
-                                                            : "M3 15h14l-7-11z";
+                     : direction.sign < 0                  ? "M3 5h14l-7 11z"
+                     : direction.sign == 0                 ? "M2 10h16M2 6h16"
+                                                           : "M3 15h14l-7-11z";
   const bool line = direction.cause == Cause::kUnresolved || (direction.sign == 0);
-  return fmt::format("<svg width=\"20\" height=\"20\" viewBox=\"0 0 20 20\" aria-hidden=\"true\"><path d=\"{}\" fill=\"{}\" "
-                     "stroke=\"currentColor\" stroke-width=\"2\"/></svg>",
-                     path, line ? "none" : "currentColor");
+  return fmt::format(
+      "<svg width=\"20\" height=\"20\" viewBox=\"0 0 20 20\" aria-hidden=\"true\"><path d=\"{}\" fill=\"{}\" "
+      "stroke=\"currentColor\" stroke-width=\"2\"/></svg>",
+      path, line ? "none" : "currentColor");
 }
 
 std::string cause_to_html(const LocateOutcome& located, const Direction& direction, std::size_t number) {
   std::string html = fmt::format(
-      "<article class=\"cause\"><header><span class=\"{}\">{}</span><h3>{}. {}</h3><span class=\"tally\">{}</span></header>\n",
-      direction.cause == Cause::kUnresolved ? "open" : "heed", sign_mark(direction), number, title_of(direction.cause),
-      how_many(direction));
+      "<article class=\"cause\"><header><span class=\"{}\">{}</span><h3>{}. {}</h3><span "
+      "class=\"tally\">{}</span></header>\n",
+      direction.cause == Cause::kUnresolved ? "open" : "heed", sign_mark(direction), number,
+      title_of(direction.cause), how_many(direction));
   html += fmt::format("<p class=\"why\">{}</p>\n", escaped(direction.explanation));
   html += figure_of(located, direction);
   std::string facts;
@@ -110,14 +123,20 @@ std::string cause_to_html(const LocateOutcome& located, const Direction& directi
     for (const std::string& motion : direction.motions) text += (text.empty() ? "" : "; ") + motion;
     fact("moves", text);
   }
-  if (direction.component) fact("part", fmt::format("{} of {}", *direction.component + 1, located.components.size() + static_cast<std::size_t>(located.components_left_out)));
+  if (direction.component)
+    fact("part",
+         fmt::format("{} of {}", *direction.component + 1,
+                     located.components.size() + static_cast<std::size_t>(located.components_left_out)));
   if (direction.moving_nodes > 0) fact("takes part", counted(direction.moving_nodes, "node"));
   if (direction.cause != Cause::kOverStiffCoupling) {
-    fact("held to K", fmt::format("energy {} of what the dofs have by themselves{}", rounded(direction.energy),
-                                  direction.residual && direction.sign == 0 ? ", residual " + rounded(*direction.residual) : ""));
+    fact("held to K",
+         fmt::format(
+             "energy {} of what the dofs have by themselves{}", rounded(direction.energy),
+             direction.residual && direction.sign == 0 ? ", residual " + rounded(*direction.residual) : ""));
   }
   fact("remedy", direction.remedy);
-  html += fmt::format("<div class=\"columns\"><dl>{}</dl><div>{}</div></div></article>\n", facts, ranked_table(direction));
+  html += fmt::format("<div class=\"columns\"><dl>{}</dl><div>{}</div></div></article>\n", facts,
+                      ranked_table(direction));
   return html;
 }
 
@@ -128,38 +147,49 @@ std::string histogram(const LocalAccuracy& accuracy) {
   const double unit = (kWidth - 2 * kLeft) / digits;
   Index most = 1;
   for (const auto& [from, count] : accuracy.histogram) most = std::max(most, count);
-  std::string svg = fmt::format("<svg class=\"chart\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Equations by digits lost\">\n", kWidth, kHeight);
+  std::string svg = fmt::format(
+      "<svg class=\"chart\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Equations by digits "
+      "lost\">\n",
+      kWidth, kHeight);
   for (const auto& [from, count] : accuracy.histogram) {
     if (count == 0) continue;
     const double height = std::max(2.0, (kBase - kTop) * count / most);
     const char* kind = from >= accuracy.alarm ? " c-alarm" : from >= accuracy.attention ? " c-heed" : "";
-    svg += fmt::format("<rect class=\"c-bar{}\" x=\"{:.1f}\" y=\"{:.1f}\" width=\"{:.1f}\" height=\"{:.1f}\"><title>{} to {} digits: {}</title></rect>\n",
-                       kind, kLeft + unit * from + 1, kBase - height, std::max(1.0, unit / 2 - 2), height, from, from + 0.5,
-                       counted(count, "equation"));
+    svg += fmt::format(
+        "<rect class=\"c-bar{}\" x=\"{:.1f}\" y=\"{:.1f}\" width=\"{:.1f}\" height=\"{:.1f}\"><title>{} to "
+        "{} digits: {}</title></rect>\n",
+        kind, kLeft + unit * from + 1, kBase - height, std::max(1.0, unit / 2 - 2), height, from, from + 0.5,
+        counted(count, "equation"));
     svg += fmt::format("<text class=\"c-small\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"middle\">{}</text>\n",
                        kLeft + unit * (from + 0.25), kBase - height - 4, grouped(count));
   }
   svg += fmt::format("<path class=\"c-axis\" d=\"M{:.0f} {:.0f}H{:.0f}\"/>\n", kLeft, kBase, kWidth - kLeft);
   for (int d = 0; d <= static_cast<int>(digits); d += 2) {
-    svg += fmt::format("<text class=\"c-small\" x=\"{:.1f}\" y=\"{:.0f}\" text-anchor=\"middle\">{}</text>\n", kLeft + unit * d, kBase + 15, d);
+    svg += fmt::format("<text class=\"c-small\" x=\"{:.1f}\" y=\"{:.0f}\" text-anchor=\"middle\">{}</text>\n",
+                       kLeft + unit * d, kBase + 15, d);
   }
   const auto level = [&](double at, const char* name) {
-    svg += fmt::format("<path class=\"c-level\" d=\"M{0:.1f} {1:.0f}V{2:.0f}\"/><text class=\"c-small\" x=\"{3:.1f}\" y=\"{4:.0f}\">{5}</text>\n",
-                       kLeft + unit * at, kBase, kTop - 10, kLeft + unit * at + 4, kTop - 2, name);
+    svg += fmt::format(
+        "<path class=\"c-level\" d=\"M{0:.1f} {1:.0f}V{2:.0f}\"/><text class=\"c-small\" x=\"{3:.1f}\" "
+        "y=\"{4:.0f}\">{5}</text>\n",
+        kLeft + unit * at, kBase, kTop - 10, kLeft + unit * at + 4, kTop - 2, name);
   };
   level(accuracy.attention, "attention");
   level(accuracy.alarm, "alarm");
-  svg += fmt::format("<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">decimal digits lost, of 16</text>\n",
-                     kWidth / 2, kBase + 32);
+  svg += fmt::format(
+      "<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">decimal digits lost, of "
+      "16</text>\n",
+      kWidth / 2, kBase + 32);
   return svg + "</svg>\n";
 }
 
 std::string scale_of(double top) {
   std::string html = "<p class=\"scale\">";
   for (int step = 0; step < 6; ++step) {
-    html += fmt::format("<span><svg viewBox=\"0 0 16 12\" aria-hidden=\"true\"><path class=\"v-field v-{0}\" d=\"M3 6h10\" "
-                        "style=\"stroke-width:9\"/></svg> {1:.1f} to {2:.1f}</span>",
-                        step, top * step / 6, top * (step + 1) / 6);
+    html += fmt::format(
+        "<span><svg viewBox=\"0 0 16 12\" aria-hidden=\"true\"><path class=\"v-field v-{0}\" d=\"M3 6h10\" "
+        "style=\"stroke-width:9\"/></svg> {1:.1f} to {2:.1f}</span>",
+        step, top * step / 6, top * (step + 1) / 6);
   }
   return html + "</p>";
 }
@@ -168,7 +198,8 @@ std::string scale_of(double top) {
 
 std::string band(const std::string& heading, const std::string& body) {
   if (body.empty()) return "";
-  return fmt::format("<section class=\"band\"><h2>{}</h2><div>\n{}</div></section>\n", escaped(heading), body);
+  return fmt::format("<section class=\"band\"><h2>{}</h2><div>\n{}</div></section>\n", escaped(heading),
+                     body);
 }
 
 std::string blocks_to_html(const std::vector<Page::Block>& blocks, std::size_t begin, std::size_t end) {
@@ -198,12 +229,15 @@ std::string blocks_to_html(const std::vector<Page::Block>& blocks, std::size_t b
 
 std::string causes_to_html(const LocateOutcome& located) {
   std::string html;
-  for (std::size_t k = 0; k < located.directions.size(); ++k) html += cause_to_html(located, located.directions[k], k + 1);
+  for (std::size_t k = 0; k < located.directions.size(); ++k)
+    html += cause_to_html(located, located.directions[k], k + 1);
   return html;
 }
 
 std::string parts_to_html(const LocateOutcome& located) {
-  if (located.components.size() < 2 && !(located.components.size() == 1 && located.components[0].rigid_energy)) return "";
+  if (located.components.size() < 2 &&
+      !(located.components.size() == 1 && located.components[0].rigid_energy))
+    return "";
   const bool rigid = std::any_of(located.components.begin(), located.components.end(),
                                  [](const ComponentRecord& part) { return part.rigid_energy.has_value(); });
   Page::Block table{Page::Kind::kTable, {}, {}, {}, 4};
@@ -215,14 +249,18 @@ std::string parts_to_html(const LocateOutcome& located) {
   table.cells.push_back(std::move(head));
   for (std::size_t k = 0; k < std::min(kPartsShown, located.components.size()); ++k) {
     const ComponentRecord& part = located.components[k];
-    std::vector<std::string> row{std::to_string(k + 1), grouped(part.nodes), grouped(part.rows), grouped(part.nullity)};
+    std::vector<std::string> row{std::to_string(k + 1), grouped(part.nodes), grouped(part.rows),
+                                 grouped(part.nullity)};
     if (part.rigid_energy) {
       for (const double e : *part.rigid_energy) row.push_back(fmt::format("{:.1e}", e));
     }
     table.cells.push_back(std::move(row));
   }
   std::string html = table_of(table);
-  if (rigid) html += "<p>x to turn z: energy of each rigid motion of the part over what its dofs have by themselves; about 1e-16 means free.</p>";
+  if (rigid)
+    html +=
+        "<p>x to turn z: energy of each rigid motion of the part over what its dofs have by themselves; "
+        "about 1e-16 means free.</p>";
   const auto rest = static_cast<Offset>(located.components.size()) + located.components_left_out -
                     static_cast<Offset>(std::min(kPartsShown, located.components.size()));
   if (rest > 0) html += fmt::format("<p>and {} more</p>", grouped(rest));
@@ -233,10 +271,12 @@ std::string mass_to_html(const LocateOutcome& located) {
   if (!located.mass) return "";
   const auto& m = located.mass->mass;
   std::string html = "<dl>" + tag("dt", "total") +
-                     tag("dd", fmt::format("x {}, y {}, z {} (struck equations carry none)", rounded(m[0]), rounded(m[1]), rounded(m[2])));
+                     tag("dd", fmt::format("x {}, y {}, z {} (struck equations carry none)", rounded(m[0]),
+                                           rounded(m[1]), rounded(m[2])));
   if (located.mass->centre) {
     const auto& c = *located.mass->centre;
-    html += tag("dt", "centre") + tag("dd", fmt::format("({}, {}, {})", rounded(c[0]), rounded(c[1]), rounded(c[2])));
+    html += tag("dt", "centre") +
+            tag("dd", fmt::format("({}, {}, {})", rounded(c[0]), rounded(c[1]), rounded(c[2])));
   }
   return html + "</dl>";
 }
@@ -245,13 +285,16 @@ std::string accuracy_to_html(const LocateOutcome& located) {
   if (!located.accuracy) return "";
   const LocalAccuracy& accuracy = *located.accuracy;
   std::string html = fmt::format(
-      "<p>log10 of k<sub>ii</sub> (K<sup>-1</sup>)<sub>ii</sub>: about so many of 16 decimal digits are lost at an equation. Typical "
-      "{:.1f}, at most {:.1f}: {}. Attention from {}, alarm from {} digits (common practice, no source). {} ({} vectors, about "
+      "<p>log10 of k<sub>ii</sub> (K<sup>-1</sup>)<sub>ii</sub>: about so many of 16 decimal digits are lost "
+      "at an equation. Typical "
+      "{:.1f}, at most {:.1f}: {}. Attention from {}, alarm from {} digits (common practice, no source). {} "
+      "({} vectors, about "
       "0.2 digits off).</p>\n",
-      accuracy.typical, accuracy.largest, accuracy_verdict(accuracy), exact(accuracy.attention), exact(accuracy.alarm),
-      escaped(accuracy.method), accuracy.vectors);
+      accuracy.typical, accuracy.largest, accuracy_verdict(accuracy), exact(accuracy.attention),
+      exact(accuracy.alarm), escaped(accuracy.method), accuracy.vectors);
   html += histogram(accuracy);
-  const std::string field = draw_field(located.picture, accuracy.by_node, std::max(accuracy.attention, accuracy.largest));
+  const std::string field =
+      draw_field(located.picture, accuracy.by_node, std::max(accuracy.attention, accuracy.largest));
   std::string worst = "<table><tr><th>node</th><th>dof</th><th class=\"right\">digits lost</th></tr>\n";
   for (std::size_t k = 0; k < std::min(kNodesShown, accuracy.worst.size()); ++k) {
     const DofShare& d = accuracy.worst[k];
@@ -260,9 +303,11 @@ std::string accuracy_to_html(const LocateOutcome& located) {
   }
   worst += "</table>";
   if (field.empty()) return html + worst;
-  return html + fmt::format("<figure><div class=\"plates\">{}<div>{}</div></div><figcaption>The largest digits lost at each "
-                            "node.{}</figcaption></figure>\n",
-                            field, worst, scale_of(std::max(accuracy.attention, accuracy.largest)));
+  return html +
+         fmt::format(
+             "<figure><div class=\"plates\">{}<div>{}</div></div><figcaption>The largest digits lost at each "
+             "node.{}</figcaption></figure>\n",
+             field, worst, scale_of(std::max(accuracy.attention, accuracy.largest)));
 }
 
 }  // namespace stanchion

@@ -25,13 +25,16 @@ std::vector<Case> cases_of(const Outcome& outcome, bool good, bool unresolved) {
   write_answer(page, outcome);
   const std::string headline = page.blocks().empty() ? outcome.command : page.blocks().front().text;
   std::vector<Case> cases{{outcome.command + " answers well", headline,
-                           unresolved ? State::kError : good ? State::kPassed : State::kFailed}};
+                           unresolved ? State::kError
+                           : good     ? State::kPassed
+                                      : State::kFailed}};
   if (outcome.count) {
     for (const ShiftCount& count : outcome.count->counts) {
       const bool known = count.below.has_value() && count.level != Level::kNone;
       cases.push_back({"count at " + exact(count.shift),
                        known ? fmt::format("{} {}", *count.below, count.meaning)
-                             : fmt::format("between {} and {} {}", count.below_range.first, count.below_range.second, count.meaning),
+                             : fmt::format("between {} and {} {}", count.below_range.first,
+                                           count.below_range.second, count.meaning),
                        known ? State::kPassed : State::kError});
     }
   }
@@ -39,8 +42,10 @@ std::vector<Case> cases_of(const Outcome& outcome, bool good, bool unresolved) {
     for (const Direction& direction : outcome.located->directions) {
       std::string name = title_of(direction.cause);
       if (!direction.nodes.empty()) name += ", " + dof_in_words(direction.nodes.front());
-      cases.push_back({name, fmt::format("{}: {} Remedy: {}", how_many(direction), direction.explanation, direction.remedy),
-                       direction.cause == Cause::kUnresolved ? State::kError : State::kFailed});
+      cases.push_back(
+          {name,
+           fmt::format("{}: {} Remedy: {}", how_many(direction), direction.explanation, direction.remedy),
+           direction.cause == Cause::kUnresolved ? State::kError : State::kFailed});
     }
   }
   return cases;
@@ -56,18 +61,21 @@ std::string to_junit(const Outcome& outcome, bool good, bool unresolved) {
     errors += one.state == State::kError ? 1 : 0;
   }
   const std::string suite = "stanchion." + outcome.command;
-  const std::string title = outcome.title.value_or(outcome.inputs.empty() ? std::string() : outcome.inputs.front().path);
-  std::string xml = fmt::format("<?xml version=\"1.0\" encoding=\"UTF-8\"?>\n<testsuites>\n<testsuite name=\"{}\" tests=\"{}\" "
-                                "failures=\"{}\" errors=\"{}\" skipped=\"0\" time=\"{:.3f}\">\n",
-                                escaped(title.empty() ? suite : title), cases.size(), failures, errors, outcome.timings.total);
+  const std::string title =
+      outcome.title.value_or(outcome.inputs.empty() ? std::string() : outcome.inputs.front().path);
+  std::string xml = fmt::format(
+      "<?xml version=\"1.0\" encoding=\"UTF-8\"?>\n<testsuites>\n<testsuite name=\"{}\" tests=\"{}\" "
+      "failures=\"{}\" errors=\"{}\" skipped=\"0\" time=\"{:.3f}\">\n",
+      escaped(title.empty() ? suite : title), cases.size(), failures, errors, outcome.timings.total);
   for (const Case& one : cases) {
-    xml += fmt::format("<testcase classname=\"{}\" name=\"{}\" time=\"{:.3f}\">", escaped(suite), escaped(one.name),
-                       &one == cases.data() ? outcome.timings.total : 0.0);
+    xml += fmt::format("<testcase classname=\"{}\" name=\"{}\" time=\"{:.3f}\">", escaped(suite),
+                       escaped(one.name), &one == cases.data() ? outcome.timings.total : 0.0);
     if (one.state == State::kPassed) {
       xml += fmt::format("<system-out>{}</system-out>", escaped(one.message));
     } else {
-      xml += fmt::format("<{0} message=\"{1}\" type=\"{2}\">{1}</{0}>", one.state == State::kFailed ? "failure" : "error",
-                         escaped(one.message), one.state == State::kFailed ? "not-good" : "unresolved");
+      xml += fmt::format("<{0} message=\"{1}\" type=\"{2}\">{1}</{0}>",
+                         one.state == State::kFailed ? "failure" : "error", escaped(one.message),
+                         one.state == State::kFailed ? "not-good" : "unresolved");
     }
     xml += "</testcase>\n";
   }

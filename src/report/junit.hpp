@@ -7,8 +7,8 @@
 
 namespace stanchion {
 
-/// One test case for the answer itself (failed when not good, in error when unresolved), one for each shift counted, one
-/// failed case for each cause.
+/// One test case for the answer itself (failed when not good, in error when unresolved), one for each shift
+/// counted, one failed case for each cause.
 std::string to_junit(const Outcome& outcome, bool good, bool unresolved);
 
 }  // namespace stanchion

@@ -9,7 +9,11 @@ constexpr const char* kReplacement = "\xEF\xBF\xBD";
 std::size_t character_length(std::string_view text, std::size_t at) {
   const auto byte = [&](std::size_t k) { return static_cast<unsigned char>(text[k]); };
   const unsigned char lead = byte(at);
-  const std::size_t length = lead < 0x80 ? 1 : lead >= 0xC2 && lead < 0xE0 ? 2 : lead >= 0xE0 && lead < 0xF0 ? 3 : lead >= 0xF0 && lead < 0xF5 ? 4 : 0;
+  const std::size_t length = lead < 0x80                   ? 1
+                             : lead >= 0xC2 && lead < 0xE0 ? 2
+                             : lead >= 0xE0 && lead < 0xF0 ? 3
+                             : lead >= 0xF0 && lead < 0xF5 ? 4
+                                                           : 0;
   if (length == 0 || at + length > text.size()) return 0;
   for (std::size_t k = 1; k < length; ++k) {
     if ((byte(at + k) & 0xC0) != 0x80) return 0;
@@ -29,7 +33,8 @@ std::string escaped(std::string_view text) {
   for (std::size_t at = 0; at < text.size();) {
     const std::size_t length = character_length(text, at);
     const char c = text[at];
-    if (length == 0 || (length == 1 && static_cast<unsigned char>(c) < 0x20 && c != '\n' && c != '\t') || c == 0x7F) {
+    if (length == 0 || (length == 1 && static_cast<unsigned char>(c) < 0x20 && c != '\n' && c != '\t') ||
+        c == 0x7F) {
       result += kReplacement;
       ++at;
       continue;

@@ -16,13 +16,15 @@ using Triple = std::array<double, 3>;
 
 constexpr double kWidth = 640, kHeight = 400, kMargin = 34;
 constexpr double kCloseWidth = 340;
-constexpr double kMotion = 0.11;           ///< of the model's size, drawn length of the largest motion
-constexpr double kCloseMotion = 0.32;      ///< of the close-up's radius
+constexpr double kMotion = 0.11;                ///< of the model's size, drawn length of the largest motion
+constexpr double kCloseMotion = 0.32;           ///< of the close-up's radius
 constexpr double kCell = 2.6, kLinkCell = 2.0;  ///< pixels that hold one dot, or one end of a line
 constexpr std::size_t kMostLines = 16000, kMostArrows = 26, kCloseNodes = 18;
 constexpr double kApart = 46;  ///< pixels between arrows
 
-double dot(const Triple& a, const Triple& b) { return a[0] * b[0] + a[1] * b[1] + a[2] * b[2]; }
+double dot(const Triple& a, const Triple& b) {
+  return a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
+}
 Triple cross(const Triple& a, const Triple& b) {
   return {a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0]};
 }
@@ -71,7 +73,8 @@ struct Point {
 /// From the model to the page.
 class Projection {
  public:
-  Projection(const ViewAxes& view, const std::vector<Triple>& shown, double width, double height, double margin)
+  Projection(const ViewAxes& view, const std::vector<Triple>& shown, double width, double height,
+             double margin)
       : view_(view) {
     double low_x = INFINITY, high_x = -INFINITY, low_y = INFINITY, high_y = -INFINITY;
     for (const Triple& p : shown) {
@@ -88,7 +91,9 @@ class Projection {
     y_ = height / 2 + scale_ * (low_y + high_y) / 2;
   }
 
-  Point at(const Triple& p) const { return {x_ + scale_ * dot(p, view_.right), y_ - scale_ * dot(p, view_.up)}; }
+  Point at(const Triple& p) const {
+    return {x_ + scale_ * dot(p, view_.right), y_ - scale_ * dot(p, view_.up)};
+  }
   double scale() const { return scale_; }
 
  private:
@@ -97,13 +102,15 @@ class Projection {
 };
 
 std::uint64_t cell_of(const Point& p, double size) {
-  const auto x = static_cast<std::int64_t>(std::floor(p.x / size)), y = static_cast<std::int64_t>(std::floor(p.y / size));
+  const auto x = static_cast<std::int64_t>(std::floor(p.x / size)),
+             y = static_cast<std::int64_t>(std::floor(p.y / size));
   return static_cast<std::uint64_t>(x) * 0x9E3779B97F4A7C15ULL ^ static_cast<std::uint64_t>(y);
 }
 
 class Drawer {
  public:
-  Drawer(const Picture& picture, const std::vector<std::array<float, 3>>& shape, const std::vector<Mark>& marks)
+  Drawer(const Picture& picture, const std::vector<std::array<float, 3>>& shape,
+         const std::vector<Mark>& marks)
       : picture_(picture), shape_(shape), marks_(marks) {}
 
   ModelDrawing run() {
@@ -126,7 +133,8 @@ class Drawer {
         high[d] = std::max(high[d], p[d]);
       }
     }
-    size_ = std::sqrt(std::pow(high[0] - low[0], 2) + std::pow(high[1] - low[1], 2) + std::pow(high[2] - low[2], 2));
+    size_ = std::sqrt(std::pow(high[0] - low[0], 2) + std::pow(high[1] - low[1], 2) +
+                      std::pow(high[2] - low[2], 2));
     if (!(size_ > 0)) size_ = 1;
   }
 
@@ -144,8 +152,8 @@ class Drawer {
   }
 
   static std::string open(double width, const std::string& label) {
-    return fmt::format("<svg class=\"view\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"{}\">\n", width, kHeight,
-                       escaped(label));
+    return fmt::format("<svg class=\"view\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"{}\">\n",
+                       width, kHeight, escaped(label));
   }
 
   std::string overview(ModelDrawing& drawing) const {
@@ -158,7 +166,8 @@ class Drawer {
     std::string svg = open(kWidth, "The model with the motion drawn on it");
     svg += lines(to, 0, "v-link", [](std::size_t, std::size_t) { return true; });
     svg += dots(to, drawing);
-    svg += lines(to, length, "v-moved", [this](std::size_t a, std::size_t b) { return moves(a) || moves(b); });
+    svg +=
+        lines(to, length, "v-moved", [this](std::size_t a, std::size_t b) { return moves(a) || moves(b); });
     if (picture_.links.empty()) svg += moved_dots(to, length);
     svg += arrows(to, length);
     svg += labels(to, kWidth);
@@ -221,9 +230,9 @@ class Drawer {
     const double dx = q.x - p.x, dy = q.y - p.y, size = std::hypot(dx, dy);
     if (size < 5) return "";
     const double ux = dx / size, uy = dy / size, head = std::min(7.0, size / 2);
-    return fmt::format("M{:.1f} {:.1f}L{:.1f} {:.1f}M{:.1f} {:.1f}L{:.1f} {:.1f}L{:.1f} {:.1f}", p.x, p.y, q.x, q.y,
-                       q.x - head * ux - 0.45 * head * uy, q.y - head * uy + 0.45 * head * ux, q.x, q.y,
-                       q.x - head * ux + 0.45 * head * uy, q.y - head * uy - 0.45 * head * ux);
+    return fmt::format("M{:.1f} {:.1f}L{:.1f} {:.1f}M{:.1f} {:.1f}L{:.1f} {:.1f}L{:.1f} {:.1f}", p.x, p.y,
+                       q.x, q.y, q.x - head * ux - 0.45 * head * uy, q.y - head * uy + 0.45 * head * ux, q.x,
+                       q.y, q.x - head * ux + 0.45 * head * uy, q.y - head * uy - 0.45 * head * ux);
   }
 
   /// A few arrows, spread over the page rather than over the numbering.
@@ -233,13 +242,15 @@ class Drawer {
     for (std::size_t node = 0; node < picture_.place.size(); ++node) {
       if (moves(node)) order.push_back(node);
     }
-    std::stable_sort(order.begin(), order.end(), [&](std::size_t a, std::size_t b) { return size_of(a) > size_of(b); });
+    std::stable_sort(order.begin(), order.end(),
+                     [&](std::size_t a, std::size_t b) { return size_of(a) > size_of(b); });
     std::vector<Point> taken;
     std::string path;
     for (const std::size_t node : order) {
       const Point p = to.at(picture_.place[node]);
-      const bool near = std::any_of(taken.begin(), taken.end(),
-                                    [&](const Point& t) { return std::hypot(t.x - p.x, t.y - p.y) < kApart; });
+      const bool near = std::any_of(taken.begin(), taken.end(), [&](const Point& t) {
+        return std::hypot(t.x - p.x, t.y - p.y) < kApart;
+      });
       if (near) continue;
       const std::string one = arrow(p, to.at(moved(node, length)));
       if (one.empty()) continue;
@@ -266,11 +277,12 @@ class Drawer {
       y = std::clamp(y, 16.0, kHeight - 12);
       last_y = y;
       const double x = right ? p.x + 22 : p.x - 22;
-      svg += fmt::format("<circle class=\"v-ring\" cx=\"{:.1f}\" cy=\"{:.1f}\" r=\"6.5\"/>"
-                         "<path class=\"v-lead\" d=\"M{:.1f} {:.1f}L{:.1f} {:.1f}\"/>"
-                         "<text class=\"v-label\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"{}\">{}</text>\n",
-                         p.x, p.y, right ? p.x + 5 : p.x - 5, p.y - 4, right ? x - 3 : x + 3, y - 4, x, y,
-                         right ? "start" : "end", escaped(marks_[k].text));
+      svg += fmt::format(
+          "<circle class=\"v-ring\" cx=\"{:.1f}\" cy=\"{:.1f}\" r=\"6.5\"/>"
+          "<path class=\"v-lead\" d=\"M{:.1f} {:.1f}L{:.1f} {:.1f}\"/>"
+          "<text class=\"v-label\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"{}\">{}</text>\n",
+          p.x, p.y, right ? p.x + 5 : p.x - 5, p.y - 4, right ? x - 3 : x + 3, y - 4, x, y,
+          right ? "start" : "end", escaped(marks_[k].text));
     }
     return svg;
   }
@@ -281,8 +293,8 @@ class Drawer {
     for (std::size_t d = 0; d < 3; ++d) {
       const double x = view_.right[d], y = view_.up[d];
       if (std::hypot(x, y) < 0.12) continue;
-      svg += fmt::format("<path d=\"M34 {:.0f}l{:.1f} {:.1f}\"/><text x=\"{:.1f}\" y=\"{:.1f}\">{}</text>", kHeight - 34,
-                         20 * x, -20 * y, 34 + 28 * x - 3, kHeight - 34 - 28 * y + 4, names[d]);
+      svg += fmt::format("<path d=\"M34 {:.0f}l{:.1f} {:.1f}\"/><text x=\"{:.1f}\" y=\"{:.1f}\">{}</text>",
+                         kHeight - 34, 20 * x, -20 * y, 34 + 28 * x - 3, kHeight - 34 - 28 * y + 4, names[d]);
     }
     return svg + "</g>\n";
   }
@@ -291,9 +303,10 @@ class Drawer {
     const double wanted = 90 / to.scale(), power = std::pow(10, std::floor(std::log10(wanted)));
     const double length = (wanted / power >= 5 ? 5 : wanted / power >= 2 ? 2 : 1) * power;
     const double pixels = length * to.scale();
-    return fmt::format("<g class=\"v-bar\"><path d=\"M{:.1f} {:.0f}v6h{:.1f}v-6\"/><text x=\"{:.1f}\" y=\"{:.0f}\" "
-                       "text-anchor=\"end\">{:.4g} in the unit of the coordinates</text></g>\n",
-                       width - 14 - pixels, kHeight - 18, pixels, width - 14, kHeight - 22, length);
+    return fmt::format(
+        "<g class=\"v-bar\"><path d=\"M{:.1f} {:.0f}v6h{:.1f}v-6\"/><text x=\"{:.1f}\" y=\"{:.0f}\" "
+        "text-anchor=\"end\">{:.4g} in the unit of the coordinates</text></g>\n",
+        width - 14 - pixels, kHeight - 18, pixels, width - 14, kHeight - 22, length);
   }
 
   /// The first mark's node with its nearest neighbours, their numbers, and the motion once more.
@@ -326,7 +339,8 @@ class Drawer {
     const auto both = [&](std::size_t a, std::size_t b) { return inside[a] != 0 && inside[b] != 0; };
     std::string svg = open(kCloseWidth, "Close up: " + marks_.front().text);
     svg += lines(to, 0, "v-link v-near", both);
-    svg += lines(to, length, "v-moved", [&](std::size_t a, std::size_t b) { return both(a, b) && (moves(a) || moves(b)); });
+    svg += lines(to, length, "v-moved",
+                 [&](std::size_t a, std::size_t b) { return both(a, b) && (moves(a) || moves(b)); });
     std::string still, moving, path;
     for (const std::size_t node : near) {
       const Point p = to.at(picture_.place[node]);
@@ -352,14 +366,16 @@ class Drawer {
       std::string text = std::to_string(picture_.node[near[k]]);
       for (std::size_t j = k + 1; j < near.size(); ++j) {
         const Point q = to.at(picture_.place[near[j]]);
-        if (std::hypot(p.x - q.x, p.y - q.y) < 0.5 && text.size() < 24) text += ", " + std::to_string(picture_.node[near[j]]);
+        if (std::hypot(p.x - q.x, p.y - q.y) < 0.5 && text.size() < 24)
+          text += ", " + std::to_string(picture_.node[near[j]]);
       }
       const bool crowded = std::any_of(taken.begin(), taken.end(), [&](const Point& t) {
         return std::fabs(t.x - p.x) < 7.0 * static_cast<double>(text.size()) && std::fabs(t.y - p.y) < 13;
       });
       if (crowded) continue;
       taken.push_back(p);
-      svg += fmt::format("<text class=\"v-number\" x=\"{:.1f}\" y=\"{:.1f}\">{}</text>\n", p.x + 9, p.y + 14, text);
+      svg += fmt::format("<text class=\"v-number\" x=\"{:.1f}\" y=\"{:.1f}\">{}</text>\n", p.x + 9, p.y + 14,
+                         text);
     }
     return svg;
   }
@@ -389,7 +405,8 @@ ViewAxes best_view(const Picture& picture, const std::vector<std::array<float, 3
   for (std::size_t i = 0; i < 3; ++i) {
     for (std::size_t j = 0; j < 3; ++j) {
       if (motion > 0) {
-        for (const auto& u : shape) seen[i][j] += static_cast<double>(u[i]) * static_cast<double>(u[j]) / motion;
+        for (const auto& u : shape)
+          seen[i][j] += static_cast<double>(u[i]) * static_cast<double>(u[j]) / motion;
       }
       if (!(spread > 0)) continue;
       for (const Triple& p : picture.place) seen[i][j] += 0.4 * (p[i] - mean[i]) * (p[j] - mean[j]) / spread;
@@ -399,7 +416,8 @@ ViewAxes best_view(const Picture& picture, const std::vector<std::array<float, 3
   ViewAxes view;
   Triple toward = axes[0];
   // Of the two sides the one from above and from the front.
-  if (toward[2] < -1e-9 || (std::fabs(toward[2]) <= 1e-9 && toward[1] > 0)) toward = {-toward[0], -toward[1], -toward[2]};
+  if (toward[2] < -1e-9 || (std::fabs(toward[2]) <= 1e-9 && toward[1] > 0))
+    toward = {-toward[0], -toward[1], -toward[2]};
   Triple aside = axes[1], along = axes[2];
   constexpr Triple kFrontAboveRight{0.6, -0.7, 0.9};
   if (dot(aside, kFrontAboveRight) < 0) aside = {-aside[0], -aside[1], -aside[2]};
@@ -425,10 +443,12 @@ std::string draw_field(const Picture& picture, const std::vector<float>& value, 
   // The largest value of a cell is the one that shows.
   std::vector<std::size_t> order(picture.place.size());
   std::iota(order.begin(), order.end(), std::size_t{0});
-  std::stable_sort(order.begin(), order.end(), [&](std::size_t a, std::size_t b) { return value[a] > value[b]; });
+  std::stable_sort(order.begin(), order.end(),
+                   [&](std::size_t a, std::size_t b) { return value[a] > value[b]; });
   std::unordered_set<std::uint64_t> seen;
   std::array<std::string, kSteps> paths;
-  const double dot_width = std::clamp(0.5 * std::sqrt(kWidth * kHeight / static_cast<double>(order.size())), 2.8, 11.0);
+  const double dot_width =
+      std::clamp(0.5 * std::sqrt(kWidth * kHeight / static_cast<double>(order.size())), 2.8, 11.0);
   for (const std::size_t node : order) {
     const Point p = to.at(picture.place[node]);
     if (!seen.insert(cell_of(p, kCell)).second) continue;
@@ -436,12 +456,15 @@ std::string draw_field(const Picture& picture, const std::vector<float>& value, 
     const int step = std::clamp(static_cast<int>(part * kSteps), 0, kSteps - 1);
     paths[static_cast<std::size_t>(step)] += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
   }
-  std::string svg = fmt::format("<svg class=\"view\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Digits lost, by "
-                                "node\">\n",
-                                kWidth, kHeight);
+  std::string svg = fmt::format(
+      "<svg class=\"view\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Digits lost, by "
+      "node\">\n",
+      kWidth, kHeight);
   for (int step = 0; step < kSteps; ++step) {
     const std::string& path = paths[static_cast<std::size_t>(step)];
-    if (!path.empty()) svg += fmt::format("<path class=\"v-field v-{}\" style=\"stroke-width:{:.1f}\" d=\"{}\"/>\n", step, dot_width, path);
+    if (!path.empty())
+      svg += fmt::format("<path class=\"v-field v-{}\" style=\"stroke-width:{:.1f}\" d=\"{}\"/>\n", step,
+                         dot_width, path);
   }
   return svg + "</svg>\n";
 }

@@ -14,7 +14,8 @@ struct ViewAxes {
   std::array<double, 3> right{1, 0, 0}, up{0, 0, 1}, toward{0, -1, 0};
 };
 
-/// The direction along which little of the motion (and of the model) is lost, a little aside so that depth shows.
+/// The direction along which little of the motion (and of the model) is lost, a little aside so that depth
+/// shows.
 ViewAxes best_view(const Picture& picture, const std::vector<std::array<float, 3>>& shape);
 
 /// What a drawing points at.
@@ -35,7 +36,8 @@ struct ModelDrawing {
 ModelDrawing draw_model(const Picture& picture, const std::vector<std::array<float, 3>>& shape,
                         const std::vector<Mark>& marks);
 
-/// The cloud coloured by a value of each node (classes v-0 to v-5 for six steps from 0 to `top`); empty without nodes.
+/// The cloud coloured by a value of each node (classes v-0 to v-5 for six steps from 0 to `top`); empty
+/// without nodes.
 std::string draw_field(const Picture& picture, const std::vector<float>& value, double top);
 
 }  // namespace stanchion

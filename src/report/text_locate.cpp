@@ -19,7 +19,8 @@ std::string ranked_nodes(const Direction& direction) {
     const DofShare& d = direction.nodes[k];
     text += fmt::format("{}{} {}", k == 0 ? "" : "; ", dof_in_words(d), percent(d.share));
   }
-  const Offset rest = Offset{direction.moving_rows} - static_cast<Offset>(std::min(kNodesShown, direction.nodes.size()));
+  const Offset rest =
+      Offset{direction.moving_rows} - static_cast<Offset>(std::min(kNodesShown, direction.nodes.size()));
   if (rest > 0) text += fmt::format("; and {} more", grouped(rest));
   return text;
 }
@@ -35,8 +36,10 @@ void write_direction(Page& page, const Direction& direction, std::size_t number)
   }
   if (!direction.nodes.empty()) page.row("nodes", ranked_nodes(direction));
   if (direction.cause != Cause::kOverStiffCoupling) {
-    std::string judged = fmt::format("energy {} of what the dofs have by themselves", rounded(direction.energy));
-    if (direction.residual && direction.sign == 0) judged += fmt::format(", residual {}", rounded(*direction.residual));
+    std::string judged =
+        fmt::format("energy {} of what the dofs have by themselves", rounded(direction.energy));
+    if (direction.residual && direction.sign == 0)
+      judged += fmt::format(", residual {}", rounded(*direction.residual));
     page.row("held to K", judged);
   }
   page.row("remedy", direction.remedy);
@@ -56,13 +59,15 @@ void write_parts(Page& page, const LocateOutcome& located) {
 
 void write_accuracy(Page& page, const LocalAccuracy& accuracy) {
   page.title("Local accuracy: digits that double precision loses, of 16");
-  page.row("typical", fmt::format("{:.1f}, at most {:.1f}; {} ({} vectors, about 0.2 digits off)", accuracy.typical,
-                                  accuracy.largest, accuracy.method, accuracy.vectors));
-  page.row("levels", fmt::format("attention from {}, alarm from {} (common practice, no source): {}",
-                                 exact(accuracy.attention), exact(accuracy.alarm), accuracy_verdict(accuracy)));
+  page.row("typical", fmt::format("{:.1f}, at most {:.1f}; {} ({} vectors, about 0.2 digits off)",
+                                  accuracy.typical, accuracy.largest, accuracy.method, accuracy.vectors));
+  page.row("levels",
+           fmt::format("attention from {}, alarm from {} (common practice, no source): {}",
+                       exact(accuracy.attention), exact(accuracy.alarm), accuracy_verdict(accuracy)));
   std::string worst;
   for (std::size_t k = 0; k < std::min<std::size_t>(4, accuracy.worst.size()); ++k) {
-    worst += fmt::format("{}{} {:.1f}", k == 0 ? "" : "; ", dof_in_words(accuracy.worst[k]), accuracy.worst[k].share);
+    worst += fmt::format("{}{} {:.1f}", k == 0 ? "" : "; ", dof_in_words(accuracy.worst[k]),
+                         accuracy.worst[k].share);
   }
   page.row("most at", worst);
 }
@@ -83,7 +88,8 @@ void write_locate(Page& page, const Outcome& outcome) {
   const LocateOutcome& located = *outcome.located;
   page.title("Where and why");
   page.sentence(location_headline(located));
-  for (std::size_t k = 0; k < located.directions.size(); ++k) write_direction(page, located.directions[k], k + 1);
+  for (std::size_t k = 0; k < located.directions.size(); ++k)
+    write_direction(page, located.directions[k], k + 1);
   write_parts(page, located);
   if (located.accuracy) write_accuracy(page, *located.accuracy);
   if (located.mass) write_mass(page, *located.mass);

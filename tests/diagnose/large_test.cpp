@@ -1,4 +1,5 @@
-// Planted defects in models of 50,000 to 200,000 equations, and what locating costs beside one count in solve mode.
+// Planted defects in models of 50,000 to 200,000 equations, and what locating costs beside one count in solve
+// mode.
 #include <gtest/gtest.h>
 
 #include "diagnose/planted.hpp"

@@ -73,7 +73,8 @@ struct PlantedModel {
     std::vector<std::int64_t> numbers;
     for (const auto& [n, p] : place) numbers.push_back(n);
     std::vector<std::int64_t> fresh(numbers.size());
-    for (std::size_t k = 0; k < fresh.size(); ++k) fresh[k] = 1000 + 7 * static_cast<std::int64_t>(k) + (random() % 7);
+    for (std::size_t k = 0; k < fresh.size(); ++k)
+      fresh[k] = 1000 + 7 * static_cast<std::int64_t>(k) + (random() % 7);
     std::shuffle(fresh.begin(), fresh.end(), random);
     std::map<std::int64_t, std::int64_t> renamed;
     for (std::size_t k = 0; k < numbers.size(); ++k) renamed[numbers[k]] = fresh[k];
@@ -110,7 +111,8 @@ struct PlantedModel {
       std::string text = "node,x,y,z\n";
       char line[160];
       for (const auto& [n, p] : place) {
-        std::snprintf(line, sizeof(line), "%lld,%.17g,%.17g,%.17g\n", static_cast<long long>(n), p[0], p[1], p[2]);
+        std::snprintf(line, sizeof(line), "%lld,%.17g,%.17g,%.17g\n", static_cast<long long>(n), p[0], p[1],
+                      p[2]);
         text += line;
       }
       request.input.nodes = files.text("nodes.csv", text);

@@ -1,7 +1,6 @@
 // Planted defects: kind, number and nodes must come out as they were put in.
 #include <gtest/gtest.h>
 
-
 #include "diagnose/planted.hpp"
 #include "model/exit_code.hpp"
 
@@ -12,9 +11,8 @@ using namespace test;
 
 /// Every node of the mesh that is cut off at x > `cut` by the specimen's own fault lies there.
 bool all_beyond(const PlantedModel& model, const Direction& direction, double cut) {
-  return std::all_of(direction.nodes.begin(), direction.nodes.end(), [&](const DofShare& d) {
-    return d.node && model.place.at(*d.node)[0] > cut - 1e-9;
-  });
+  return std::all_of(direction.nodes.begin(), direction.nodes.end(),
+                     [&](const DofShare& d) { return d.node && model.place.at(*d.node)[0] > cut - 1e-9; });
 }
 
 struct Size {
@@ -104,9 +102,12 @@ TEST_P(Planted, NegativeSpringIsFoundAtItsDof) {
 }
 
 INSTANTIATE_TEST_SUITE_P(Specimens, Planted,
-                         testing::Values(Size{"solid", 500}, Size{"solid", 6000}, Size{"plate", 600}, Size{"plate", 8000},
-                                         Size{"frame", 600}, Size{"frame", 6000}, Size{"lattice", 900}),
-                         [](const auto& given) { return given.param.name + std::string("_") + std::to_string(given.param.unknowns); });
+                         testing::Values(Size{"solid", 500}, Size{"solid", 6000}, Size{"plate", 600},
+                                         Size{"plate", 8000}, Size{"frame", 600}, Size{"frame", 6000},
+                                         Size{"lattice", 900}),
+                         [](const auto& given) {
+                           return given.param.name + std::string("_") + std::to_string(given.param.unknowns);
+                         });
 
 Outcome ask(const PlantedModel& model, bool with_dofs = true, bool with_nodes = true) {
   ModelFiles files;
@@ -173,14 +174,17 @@ TEST(PlantedDofs, EmptyRowsAreUnattached) {
   EXPECT_DOUBLE_EQ(direction.nodes[0].share, 1);
 }
 
-/// rx, ry of a plate and an added rz of no stiffness, turned into other axes at every node: no row is empty then.
+/// rx, ry of a plate and an added rz of no stiffness, turned into other axes at every node: no row is empty
+/// then.
 PlantedModel tilted_plate(double angle) {
   PlantedModel flat;
   flat.append(specimen_with("plate", 3000, Fault::kNone), 0, 0);
-  std::map<std::int64_t, std::array<Index, 3>> rotations;  // equations rx, ry, rz of nodes that have both of the first
+  std::map<std::int64_t, std::array<Index, 3>>
+      rotations;  // equations rx, ry, rz of nodes that have both of the first
   std::map<std::int64_t, std::array<Index, 2>> both;
   for (Index e = 0; e < flat.rows(); ++e) {
-    auto& pair = both.try_emplace(flat.node[static_cast<std::size_t>(e)], std::array<Index, 2>{-1, -1}).first->second;
+    auto& pair =
+        both.try_emplace(flat.node[static_cast<std::size_t>(e)], std::array<Index, 2>{-1, -1}).first->second;
     if (flat.dof[static_cast<std::size_t>(e)] == "rx") pair[0] = e;
     if (flat.dof[static_cast<std::size_t>(e)] == "ry") pair[1] = e;
   }
@@ -237,8 +241,8 @@ TEST(PlantedRotations, WithoutStiffnessAreOneCauseHoweverManyNodes) {
   }
 }
 
-/// All at once, in one model of four parts: hinge, loose part with its seam, soft spring, rotations without stiffness,
-/// a negative spring, an unattached dof.
+/// All at once, in one model of four parts: hinge, loose part with its seam, soft spring, rotations without
+/// stiffness, a negative spring, an unattached dof.
 TEST(PlantedTogether, EveryDefectIsNamedApart) {
   for (const unsigned seed : {1U, 2U, 3U}) {
     PlantedModel model = tilted_plate(0.4);
@@ -273,17 +277,19 @@ TEST(PlantedTogether, EveryDefectIsNamedApart) {
   }
 }
 
-/// Everything in one connected body: a free block of bricks whose end hangs on one edge has six rigid motions and a
-/// hinge, which are seven directions with two causes.
+/// Everything in one connected body: a free block of bricks whose end hangs on one edge has six rigid motions
+/// and a hinge, which are seven directions with two causes.
 TEST(PlantedTogether, SixRigidMotionsAndAHingeOfOneBodyComeApart) {
   PlantedModel model;
   Specimen hinged = specimen_with("solid", 1500, Fault::kHinge);
   const Specimen free = specimen_with("solid", 1500, Fault::kFree);
-  // The clamped face of the hinged block gets its bricks' stiffness back from the free block: both have the same mesh up
-  // to the cut, so the missing rows are those of the free block.
+  // The clamped face of the hinged block gets its bricks' stiffness back from the free block: both have the
+  // same mesh up to the cut, so the missing rows are those of the free block.
   std::map<std::pair<Index, int>, Index> of_hinged, of_free;
-  for (std::size_t e = 0; e < hinged.dofs.size(); ++e) of_hinged[{hinged.dofs[e].node, static_cast<int>(hinged.dofs[e].dof)}] = static_cast<Index>(e);
-  for (std::size_t e = 0; e < free.dofs.size(); ++e) of_free[{free.dofs[e].node, static_cast<int>(free.dofs[e].dof)}] = static_cast<Index>(e);
+  for (std::size_t e = 0; e < hinged.dofs.size(); ++e)
+    of_hinged[{hinged.dofs[e].node, static_cast<int>(hinged.dofs[e].dof)}] = static_cast<Index>(e);
+  for (std::size_t e = 0; e < free.dofs.size(); ++e)
+    of_free[{free.dofs[e].node, static_cast<int>(free.dofs[e].dof)}] = static_cast<Index>(e);
   model.append(hinged, 0, 0);
   std::map<Index, Index> added;  // equation of the free block -> new equation
   for (const auto& [key, e] : of_free) {
@@ -300,7 +306,8 @@ TEST(PlantedTogether, SixRigidMotionsAndAHingeOfOneBodyComeApart) {
   };
   for (Index j = 0; j < k.rows; ++j) {
     for (Offset p = k.column_start[j]; p < k.column_start[Offset{j} + 1]; ++p) {
-      if (added.count(j) + added.count(k.row[p]) > 0) model.entries.push_back({number(k.row[p]), number(j), k.value[p]});
+      if (added.count(j) + added.count(k.row[p]) > 0)
+        model.entries.push_back({number(k.row[p]), number(j), k.value[p]});
     }
   }
   model.shuffle(4);
@@ -320,7 +327,8 @@ TEST(PlantedCoupling, OverStiffRowsAreNamedWithTheDigitsTheyCost) {
   model.append(specimen_with("solid", 600, Fault::kNone), 0, 0);
   const Index a = model.equation(60, "ux"), b = model.equation(61, "ux");
   const double stiff = 1e11 * model.diagonal(a);
-  model.entries.insert(model.entries.end(), {{a, a, stiff}, {b, b, stiff}, {std::max(a, b), std::min(a, b), -stiff}});
+  model.entries.insert(model.entries.end(),
+                       {{a, a, stiff}, {b, b, stiff}, {std::max(a, b), std::min(a, b), -stiff}});
   const Outcome outcome = ask(model);
   ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
   const Direction& direction = outcome.located->directions[0];
@@ -371,7 +379,8 @@ TEST(Located, LongColumnIsUnresolvedNotAMechanism) {
   model.append(specimen_with("column", 20000, Fault::kNone), 0, 0);
   const Outcome outcome = ask(model);
   ASSERT_FALSE(outcome.located->directions.empty());
-  for (const Direction& d : outcome.located->directions) EXPECT_EQ(d.cause, Cause::kUnresolved) << d.explanation;
+  for (const Direction& d : outcome.located->directions)
+    EXPECT_EQ(d.cause, Cause::kUnresolved) << d.explanation;
   EXPECT_EQ(exit_code(outcome, {}), kExitUnresolved);
 }
 

@@ -53,7 +53,8 @@ TEST(Html, EverySampleMakesAPageThatLoadsNothing) {
     SCOPED_TRACE(name);
     const std::string page = to_html(outcome, true, false);
     EXPECT_EQ(page.rfind("<!DOCTYPE html>", 0), 0U);
-    for (const char* forbidden : {"<script", "http:", "https:", "<link", "@import", "url(", "<img", "<iframe"}) {
+    for (const char* forbidden :
+         {"<script", "http:", "https:", "<link", "@import", "url(", "<img", "<iframe"}) {
       EXPECT_EQ(page.find(forbidden), std::string::npos) << forbidden;
     }
     EXPECT_NE(page.find("Not checked"), std::string::npos);
@@ -82,7 +83,8 @@ TEST(Html, WhatTheUserWroteIsEscaped) {
   outcome.inputs[0].path = "a<b>.mtx";
   const std::string page = to_html(outcome, true, false);
   EXPECT_EQ(page.find("<script>"), std::string::npos);
-  EXPECT_NE(page.find("&lt;script&gt;alert(&#39;1&#39;)&lt;/script&gt; &amp; &quot;more&quot;"), std::string::npos);
+  EXPECT_NE(page.find("&lt;script&gt;alert(&#39;1&#39;)&lt;/script&gt; &amp; &quot;more&quot;"),
+            std::string::npos);
   EXPECT_NE(page.find("a&lt;b&gt;.mtx"), std::string::npos);
 }
 
@@ -100,19 +102,25 @@ TEST(Csv, FieldsAreQuotedAsRfc4180Asks) {
 }
 
 TEST(Junit, AnswersGoodNotGoodAndOpenDiffer) {
-  EXPECT_NE(to_junit(samples::definite(), true, false).find("failures=\"0\" errors=\"0\""), std::string::npos);
-  EXPECT_NE(to_junit(samples::indefinite(), false, false).find("failures=\"1\" errors=\"0\""), std::string::npos);
-  EXPECT_NE(to_junit(samples::counted_in_part(), false, true).find("failures=\"0\" errors=\"2\""), std::string::npos);
+  EXPECT_NE(to_junit(samples::definite(), true, false).find("failures=\"0\" errors=\"0\""),
+            std::string::npos);
+  EXPECT_NE(to_junit(samples::indefinite(), false, false).find("failures=\"1\" errors=\"0\""),
+            std::string::npos);
+  EXPECT_NE(to_junit(samples::counted_in_part(), false, true).find("failures=\"0\" errors=\"2\""),
+            std::string::npos);
   EXPECT_NE(to_junit(samples::located(), false, true).find("failures=\"2\" errors=\"2\""), std::string::npos);
 }
 
-double dot(const std::array<double, 3>& a, const std::array<double, 3>& b) { return a[0] * b[0] + a[1] * b[1] + a[2] * b[2]; }
+double dot(const std::array<double, 3>& a, const std::array<double, 3>& b) {
+  return a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
+}
 
 TEST(ModelView, AViewShowsTheMotionAndIsOrthonormal) {
   Picture picture;
   for (int i = 0; i < 27; ++i) {
     picture.node.push_back(i);
-    picture.place.push_back({static_cast<double>(i % 3), static_cast<double>(i / 3 % 3), static_cast<double>(i / 9)});
+    picture.place.push_back(
+        {static_cast<double>(i % 3), static_cast<double>(i / 3 % 3), static_cast<double>(i / 9)});
     picture.component.push_back(0);
   }
   for (std::size_t d = 0; d < 3; ++d) {
