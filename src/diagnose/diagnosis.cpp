@@ -560,7 +560,7 @@ class Diagnostician {
     }
     const Index nodes = s_.part_nodes[static_cast<std::size_t>(*direction.component)];
     const bool local =
-        direction.moving_nodes <= std::max<Index>(12, nodes / 50) && 2 * direction.moving_nodes < nodes;
+        direction.moving_nodes <= std::max<Index>(12, nodes / 20) && 2 * direction.moving_nodes < nodes;
     direction.cause = local ? Cause::kNegativePatch : Cause::kUnstableWhole;
   }
 
