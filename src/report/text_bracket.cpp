@@ -39,7 +39,6 @@ std::string digits_of(double value, double low, double high) {
 std::string proof_in_words(const CriticalValue& value) {
   std::string text = backing_in_words(value.level, value.failure_probability);
   text += value.proof == "residual" ? ", residual interval and counts" : ", counts";
-  if (value.rigid_body) text += "; rigid body or mechanism";
   return text;
 }
 
@@ -74,7 +73,7 @@ void write_values(Page& page, const std::vector<CriticalValue>& values, bool her
   rows.push_back(heading);
   for (const CriticalValue& value : values) {
     std::vector<std::string> row{digits_of(value.value, value.low, value.high), exact(value.low), exact(value.high),
-                                 grouped(value.multiplicity)};
+                                 grouped(value.multiplicity) + (value.rigid_body ? ", rigid body or mechanism" : "")};
     if (!one) row.push_back(proof_in_words(value));
     if (hertz) {
       row.insert(row.begin(), digits_of(hertz_of(value.value), hertz_of(value.low), hertz_of(value.high)));
