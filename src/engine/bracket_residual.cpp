@@ -156,11 +156,13 @@ class ResidualBrackets {
       std::copy(work_.begin(), work_.end(), block);
       base_->solve(block);
     };
-    outcome_.memory.forecast = std::max(outcome_.memory.forecast, resident_bytes_with(Offset{order} * most * 8));
+    // The basis, vectors and work blocks, and the factor that a count at an end may keep beside the base's.
+    const Offset doubles = Offset{order} * (most + 2 * wanted + 8 * kV);
+    outcome_.memory.forecast =
+        std::max(outcome_.memory.forecast, resident_bytes() + doubles * Offset{sizeof(double)} +
+                                               counter_.pencil().analysis().forecast.peak_bytes_solve);
     return {apply, order, static_cast<Index>(most), CounterRandom::combine(counter_.pencil().seed(), 0x5c31), pool_};
   }
-
-  static Offset resident_bytes_with(Offset more) { return resident_bytes() + more; }
 
   double closeness() const { return 0.1 * request_.bracket.width; }
 
