@@ -11,6 +11,7 @@ namespace {
 constexpr double kPush = -1e-10;    ///< force over k_ii from which a push counts
 constexpr double kIsolated = 1e-6;  ///< what neighbours may feel of it
 constexpr std::size_t kMostCandidates = 32;
+constexpr double kSwamps = 1e3;  ///< times the median diagonal: stiff enough to be a penalty
 
 /// Centre of every part's placed nodes and their spread.
 struct PartPlace {
@@ -186,6 +187,14 @@ std::vector<StiffCoupling> find_stiff_couplings(const Structure& s, const Shifte
     physical[static_cast<std::size_t>(row)] = s.diagonal[static_cast<std::size_t>(row)] / (scale * scale);
   }
   std::vector<StiffCoupling> found;
+  std::vector<double> positive;
+  for (const double d : physical) {
+    if (d > 0) positive.push_back(d);
+  }
+  if (positive.empty()) return found;
+  std::nth_element(positive.begin(), positive.begin() + static_cast<std::ptrdiff_t>(positive.size() / 2),
+                   positive.end());
+  const double usual = positive[positive.size() / 2];
   const auto comparable = [&](Index i, Index j) {
     const auto a = static_cast<std::size_t>(i), b = static_cast<std::size_t>(j);
     return (!s.named || s.kind[a] == s.kind[b]) && physical[a] > 0 && physical[b] > 0;
@@ -202,7 +211,8 @@ std::vector<StiffCoupling> find_stiff_couplings(const Structure& s, const Shifte
       neighbour_most[ii] = std::max(neighbour_most[ii], physical[jj]);
       neighbour_most[jj] = std::max(neighbour_most[jj], physical[ii]);
       const double together = physical[ii] + physical[jj] - 2 * std::fabs(a);
-      if (std::fabs(together) < limit * (physical[ii] + physical[jj])) {
+      const bool swamps = physical[ii] + physical[jj] > kSwamps * usual;
+      if (swamps && std::fabs(together) < limit * (physical[ii] + physical[jj])) {
         const double ratio =
             std::max(together, 1e-17 * (physical[ii] + physical[jj])) / (physical[ii] + physical[jj]);
         found.push_back({i, j, -std::log10(ratio)});
