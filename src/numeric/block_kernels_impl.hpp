@@ -111,7 +111,7 @@ inline Pair two_product(double a, double b) {
   return {p, __builtin_fma(a, b, -p)};
 }
 
-/// sum_t c_t v_t with relative error below 4 2^-106 of sum_t |c_t v_t|.
+/// sum_t c_t v_t with an error below 4 m 2^-106 of sum_t |c_t v_t|, m the members.
 inline Pair coefficient(const DataColumns& data, Offset k) {
   Pair sum = two_product(data.coefficients[0], data.values[0][k]);
   for (Index t = 1; t < data.members; ++t) {

@@ -31,11 +31,6 @@ Sums norms(const std::vector<double>& block) {
   return sums;
 }
 
-/// Bound on ||b - A y|| for b = extended_times(A, y), beyond 1.01 u ||b||.
-double product_error(const AbsoluteNorm& size, double y_norm) {
-  return 8 * static_cast<double>(size.longest_row + 8) * kUnit * kUnit * size.norm * y_norm;
-}
-
 std::vector<double> column_of(const std::vector<double>& block, std::size_t v) {
   std::vector<double> column(block.size() / kV);
   for (std::size_t i = 0; i < column.size(); ++i) column[i] = block[i * kV + v];
@@ -112,7 +107,8 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
     const double size = std::fabs(theta[v]);
     // r as computed differs from C x - theta B x by the roundings of both products, of theta times one, of the sum.
     const double rounding = 1.01 * kUnit * (c_norm[v] + 2 * size * b_norm[v] + r_norm[v]) +
-                            product_error(second_size, x_norm[v]) + size * product_error(base_size, x_norm[v]) + 0x1p-500;
+                            (second_size.product_error() + size * base_size.product_error()) * x_norm[v] +
+                            0x1p-500;
     const double shrink = std::sqrt(1 - base.relative());
     pair.theta = theta[v];
     pair.length = x_norm[v];

@@ -106,6 +106,44 @@ TEST(ResidualIntervals, RefiningMakesThemTighter) {
   EXPECT_LT(after, before / 100);
 }
 
+/// 4000 equal products whose sum rounds the same way every time, and two that cancel it but for its last digits. The
+/// error of the double-double sum is 300 u^2 of its size, far above what two members could lose.
+TEST(ResidualIntervals, CountTheMembersOfASum) {
+  __extension__ using Wide = __int128;
+  constexpr int kMembers = 4000;
+  constexpr std::int64_t kFactor = 5348832172657171, kEntry = 6991685313819123;
+  Wide exact = Wide{kFactor} * kEntry * kMembers;
+  std::vector<double> coefficients(kMembers + 1, static_cast<double>(kFactor));
+  coefficients.front() = 0;
+  for (const int places : {66, 20}) {
+    const auto part = static_cast<std::int64_t>(exact >> places);
+    exact -= Wide{part} << places;
+    coefficients.push_back(-std::ldexp(static_cast<double>(part), places));
+  }
+  const SymmetricMatrix one = from_triplets(1, {{0, 0, 1.0}});
+  const SymmetricMatrix entry = from_triplets(1, {{0, 0, static_cast<double>(kEntry)}});
+  std::vector<const SymmetricMatrix*> members(kMembers + 1, &entry);
+  members.front() = &one;
+  members.insert(members.end(), 2, &one);
+  const KnownPencil known{from_triplets(1, {{0, 0, 1.0}}), from_triplets(1, {{0, 0, 1.0}}), {}};
+  PencilParts parts(known);
+  parts.family = unite(members);
+  ShiftedMatrix base_matrix{&parts.family, std::vector<double>(members.size(), 0.0), &parts.scale, 0};
+  base_matrix.coefficients.front() = 1;
+  DefiniteBaseOptions options;
+  options.smallest_eigenvalue = 1;
+  auto base = DefiniteBase::make(parts.analysis, base_matrix, options, parts.pool);
+  ASSERT_TRUE(base.ok() && *base);
+  std::vector<double> coordinates(kBlockVectors, 0.0);
+  coordinates.front() = 1;
+  const ShiftedMatrix second{&parts.family, coefficients, &parts.scale, 0};
+  const ResidualPair pair = residual_pairs(**base, second, coordinates, 1).front();
+  const double size = 2.0 * kMembers * static_cast<double>(kFactor) * static_cast<double>(kEntry);
+  const double error = std::fabs(pair.theta - static_cast<double>(exact));
+  EXPECT_GT(error, 100 * 0x1p-106 * size);
+  EXPECT_LE(error, pair.radius);
+}
+
 TEST(DefiniteBase, IsNoneForAMatrixThatIsNotDefinite) {
   const KnownPencil known = known_pencil({1, 2, 3, 4}, 2);
   PencilParts parts(known);
