@@ -86,6 +86,7 @@ void subtract_strip(const double* a, const double* b, Index depth, Index rows, I
 
 void subtract_product(const double* left, Index left_stride, const double* right, Index right_stride, Index depth,
                       Index rows, Index columns, Index first_row, Index first_column, double* c, Index leading) {
+  if (rows <= 0) return;  // an operand without rows may be null
   for (Index j = first_column / kColumnStrip * kColumnStrip; j < columns; j += kColumnStrip) {
     const double* b = right + static_cast<long>(j / kColumnStrip) * right_stride;
     const Index width = columns - j < kColumnStrip ? columns - j : kColumnStrip;
@@ -125,6 +126,7 @@ void pad_rows(const double* a, Index leading, Index rows, Index depth, double* p
 
 void multiply_by_upper(const double* a, Index leading, Index rows, const double* factor, Index width, double* out,
                        Index out_stride) {
+  if (rows <= 0) return;
   for (Index j = 0; j < width; j += kColumnStrip) {
     // Column j of the factor has its last entry on the diagonal.
     const Index depth = j + kColumnStrip < width ? j + kColumnStrip : width;
@@ -182,6 +184,8 @@ void columns_abs_max(const double* w, Index stride, Index strips, double* out) {
 
 void strips_abs_max(const double* w, Index stride, Index rows, Index columns, double* out) {
   const Index strips = (rows + kColumnStrip - 1) / kColumnStrip;
+  for (Index empty = 0; strips == 0 && empty < columns; ++empty) out[empty] = 0;
+  if (strips == 0) return;
   Index k = 0;
   for (; k + 8 <= columns; k += 8) columns_abs_max<8>(w + k * kColumnStrip, stride, strips, out + k);
   for (; k < columns; ++k) columns_abs_max<1>(w + k * kColumnStrip, stride, strips, out + k);
@@ -225,6 +229,7 @@ struct ColumnOut {
 void divide_strips(const double* w, Index stride, Index rows, Index columns, PivotArrays pivots, const double* sign,
                    double* left, Index left_stride, double* plain, Index leading, double* abs_sum,
                    double* signed_sum) {
+  if (rows <= 0) return;
   const Index strips = (rows + kLanes - 1) / kLanes;
   const auto column = [&](Index k) {
     return ColumnOut{left + static_cast<long>(k) * kRowStrip, left_stride,

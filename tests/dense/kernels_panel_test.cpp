@@ -13,8 +13,6 @@ namespace {
 
 using test::Random;
 
-constexpr double kGuard = -777.5;
-
 std::vector<double> random_values(Random& random, std::size_t count) {
   std::vector<double> values(count);
   for (double& v : values) v = test::uniform(random, -1, 1) * std::exp2(test::uniform(random, -20, 20));
