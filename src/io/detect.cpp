@@ -21,11 +21,21 @@ bool is_binary(std::string_view text) {
   return text.substr(0, 4096).find('\0') != std::string_view::npos;
 }
 
+/// Characters of a line in which a misspelt header is looked for.
+constexpr std::size_t kHeaderSearched = 80;
+
 Detected by_fields(std::string_view text) {
   LineWalker walker(text);
   std::string_view line;
   while (walker.next(line)) {
     const std::string_view content = trimmed(line);
+    // Read as triplets, the size line of a Matrix Market file would be an entry.
+    if (lower_case(content.substr(0, kHeaderSearched)).find("matrixmarket") != std::string::npos) {
+      return unknown("bad-header",
+                     "the line \"" + excerpt(content) + "\" looks like the header of a Matrix Market file, which must "
+                     "be the first line and begin with %%MatrixMarket",
+                     "start the file with: %%MatrixMarket matrix coordinate real symmetric", walker.number());
+    }
     if (content.empty() || content.front() == '%' || content.front() == '#') continue;
     Detected found;
     found.separator = separator_of(content);

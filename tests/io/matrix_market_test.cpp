@@ -46,6 +46,15 @@ TEST(MatrixMarket, RefusesOtherKindsByName) {
   expect_refused("%%MatrixMarket vector coordinate real symmetric\n", "bad-header", "k.mtx:1");
 }
 
+TEST(MatrixMarket, AMisspeltHeaderIsNotReadAsTriplets) {
+  const std::string body = " matrix coordinate real symmetric\n2 2 2\n1 1 4\n2 2 5\n";
+  for (const char* start : {"%MatrixMarket", "%% MatrixMarket", " %%MatrixMarket", "MatrixMarket", "#MatrixMarket",
+                            "%%%matrixmarket", "\xEF\xBB\xBF%%MatrixMarket"}) {
+    expect_refused(start + body, "bad-header", "k.mtx:1");
+  }
+  expect_refused("% a comment first\n%%MatrixMarket" + body, "bad-header", "k.mtx:2");
+}
+
 TEST(MatrixMarket, RefusesBadSizes) {
   expect_refused(kSymmetric + "2 3 1\n1 1 1\n", "not-square", "k.mtx:2");
   expect_refused(kSymmetric + "0 0 0\n", "empty-matrix", "k.mtx:2");
