@@ -68,9 +68,9 @@ SymmetricMatrix principal_submatrix(const SymmetricMatrix& matrix, const std::ve
   return from_triplets(static_cast<Index>(keep.size()), entries);
 }
 
-/// A few units in the last place outwards, for the roundings of the band itself.
-double widened(double value, int direction) {
-  return value + direction * std::fabs(value) * 0x1p-50;
+/// A few units in the last place outwards, for the roundings of the band itself, reckoned from `origin`.
+double widened(double value, int direction, double origin = 0) {
+  return value + direction * (std::fabs(value) + std::fabs(origin)) * 0x1p-50;
 }
 
 /// The one of two that says less; statements that need both fail when either does.
@@ -113,7 +113,7 @@ Status PencilCounter::prepare(ModelInput model) {
   return {};
 }
 
-Status PencilCounter::judge() {
+Status PencilCounter::judge(bool any_origin) {
   if (request_.pencil == Pencil::kStiffness) {
     kind_ = CountKind::kBelow;
     return {};
@@ -125,7 +125,7 @@ Status PencilCounter::judge() {
     kind_ = mass_semidefinite_ ? CountKind::kBelow : CountKind::kDirections;
     return {};
   }
-  return judge_stiffness();
+  return judge_stiffness(any_origin);
 }
 
 void PencilCounter::accept_definite(const Certificate& why) {
@@ -190,7 +190,7 @@ Result<CertifiedInertia> PencilCounter::certify_apart(ModelInput part) {
 }
 
 /// K certified definite makes counts of factors between 0 and f; anything else is said first.
-Status PencilCounter::judge_stiffness() {
+Status PencilCounter::judge_stiffness(bool any_origin) {
   auto definite = pencil_->certify(0, true, data_error(*pencil_, 0), pool_, outcome_);
   if (!definite.ok()) return definite.status();
   stiffness_ = *definite;
@@ -207,6 +207,11 @@ Status PencilCounter::judge_stiffness() {
   }
   kind_ = CountKind::kDirections;
   if (request_.pencil == Pencil::kMass) {
+    if (any_origin) {
+      auto found = look_for_origin();
+      if (!found.ok()) return found.status();
+      if (*found) return {};
+    }
     warn("mass-not-definite",
          "M could not be certified positive definite, so the numbers are negative directions of K - s M, not counts of "
          "eigenvalues below s");
@@ -218,6 +223,32 @@ Status PencilCounter::judge_stiffness() {
            " zero directions), so no count of critical factors follows; the inertia of K + f G is reported instead. "
            "Remedy: run `stanchion check` on K first");
   return definite->inertia.zero > 0 ? look_for_common_null_vectors() : Status{};
+}
+
+/// K - s M definite at one s < 0 makes counts of the values above that s, whatever M is
+/// (spectrum/residual_bound.md, 5). So a free body whose M has null vectors of its own is counted. Powers of
+/// ten, so that another path finds the same.
+Result<bool> PencilCounter::look_for_origin() {
+  const double size = pencil_->size_ratio();
+  if (!(size > 0) || !std::isfinite(size)) return false;
+  for (const int below : {6, 4, 2}) {
+    char text[32];
+    std::snprintf(text, sizeof(text), "-1e%d", static_cast<int>(std::floor(std::log10(size))) - below);
+    const double origin = std::strtod(text, nullptr);
+    if (!(origin < 0) || !std::isfinite(origin)) return false;
+    auto definite = inertia_at(origin, true);
+    if (!definite.ok()) return definite.status();
+    if (verdict_of(definite->inertia, definite->certificate.level) != Verdict::kPositiveDefinite) continue;
+    kind_ = CountKind::kAbove;
+    origin_ = origin;
+    base_ = definite->certificate;
+    stiffness_bound_ = definite->certificate.smallest_eigenvalue_above.value_or(0);
+    warn("mass-not-definite",
+         "M could not be certified positive semidefinite, nor K definite; K - s M is definite at s = " +
+             number_text(origin) + ", so counts are of the eigenvalues above that");
+    return true;
+  }
+  return false;
 }
 
 /// Directions that are zero in K and in K + f G alike are zero in G, at the resolution: K + f G is then singular at every
@@ -255,9 +286,13 @@ double PencilCounter::data_error(const PreparedPencil& pencil, double factor) co
   return request_.digits ? pencil.digits_error(factor, *request_.digits) : 0;
 }
 
+CountKind PencilCounter::kind_at(double shift) const {
+  return kind_ == CountKind::kAbove && shift <= origin_ ? CountKind::kDirections : kind_;
+}
+
 std::string PencilCounter::meaning(double shift) const {
   const bool factors = request_.pencil == Pencil::kGeometric;
-  switch (kind_) {
+  switch (kind_at(shift)) {
     case CountKind::kFromZero:
       if (factors) return shift < 0 ? "critical factors between the shift and 0" : "critical factors between 0 and the shift";
       return shift < 0 ? "eigenvalues of K x = s M x between the shift and 0"
@@ -265,6 +300,8 @@ std::string PencilCounter::meaning(double shift) const {
     case CountKind::kBelow:
       return request_.pencil == Pencil::kStiffness ? "eigenvalues of K strictly below the shift, in the mixed units of K"
                                                    : "eigenvalues of K x = s M x strictly below the shift";
+    case CountKind::kAbove:
+      return "eigenvalues of K x = s M x above " + number_text(origin_) + " and strictly below the shift";
     case CountKind::kDirections:
       break;
   }
@@ -319,6 +356,10 @@ ShiftCount PencilCounter::count_from(double shift, const CertifiedInertia& found
     count.below = least;
     rest_on(count, found.certificate);
     if (found.exclusion_radius > 0) count.no_eigenvalue_within = found.exclusion_radius;
+    // What is said of the neighbourhood stays where counts are of values, so that two of them can confirm it.
+    if (kind_at(shift) == CountKind::kAbove && count.no_eigenvalue_within) {
+      count.no_eigenvalue_within = std::min(*count.no_eigenvalue_within, (shift - origin_) * (1 - 0x1p-50));
+    }
   } else {
     count.holds_outside = band(shift, found.certificate);
     warnings.push_back({"shift-at-eigenvalue", at_eigenvalue(count, inertia.zero), place});
@@ -343,19 +384,22 @@ void PencilCounter::rest_on(ShiftCount& count, const Certificate& own) const {
 std::optional<std::pair<double, double>> PencilCounter::band(double shift, const Certificate& certificate) const {
   if (!certificate.resolution || !certificate.error_bound) return std::nullopt;
   const double reach = (*certificate.resolution + *certificate.error_bound) * (1 + 0x1p-50);
-  if (kind_ == CountKind::kFromZero) {
-    const double relative = reach / stiffness_bound_ * (1 + 0x1p-50);
+  const CountKind kind = kind_at(shift);
+  if (kind == CountKind::kFromZero || kind == CountKind::kAbove) {
+    const double relative = reach / stiffness_bound_ * (1 + 0x1p-50), far = shift - origin_;
     if (!(relative < 1)) return std::nullopt;
-    const double inner = shift / (1 + relative), outer = shift / (1 - relative);
-    return std::pair{widened(std::min(inner, outer), -1), widened(std::max(inner, outer), 1)};
+    const double inner = far / (1 + relative) + origin_, outer = far / (1 - relative) + origin_;
+    return std::pair{widened(std::min(inner, outer), -1, origin_),
+                     widened(std::max(inner, outer), 1, origin_)};
   }
-  if (kind_ == CountKind::kDirections || !(pencil_->second_matrix_bound() > 0)) return std::nullopt;
+  if (kind == CountKind::kDirections || !(pencil_->second_matrix_bound() > 0)) return std::nullopt;
   const double width = reach / pencil_->second_matrix_bound() * (1 + 0x1p-50);
   return std::pair{widened(shift - width, -1), widened(shift + width, 1)};
 }
 
 std::optional<CountFact> PencilCounter::fact(const ShiftCount& count) const {
-  if (kind_ == CountKind::kDirections || count.certificate.level == Level::kNone) return std::nullopt;
+  if (kind_at(count.shift) == CountKind::kDirections || count.certificate.level == Level::kNone)
+    return std::nullopt;
   CountFact fact{count.shift, count.below_range.first, count.below_range.second, count.holds_outside,
                  Level::kProved, 0};
   if (kind_ == CountKind::kFromZero && count.shift < 0) {

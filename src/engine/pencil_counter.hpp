@@ -12,8 +12,9 @@ namespace stanchion {
 
 /// What the numbers of a pencil count.
 enum class CountKind {
-  kBelow,      ///< values strictly below the shift
-  kFromZero,   ///< values between 0 and the shift, on either side: K is certified definite
+  kBelow,     ///< values strictly below the shift
+  kFromZero,  ///< values between 0 and the shift, on either side: K is certified definite
+  kAbove,     ///< values above an origin < 0 and strictly below the shift: K - origin M is certified definite
   kDirections  ///< negative directions of the matrix at the shift, nothing else
 };
 
@@ -27,9 +28,10 @@ class PencilCounter {
   /// Analyses the pencil and looks at M. Errors: those of reading, analysing and factoring.
   Status prepare(ModelInput model);
 
-  /// Settles what counts mean: K certified definite, or M semidefinite, or neither, with a warning. Call after
-  /// prepare(); the safety question calls it only when it has to.
-  Status judge();
+  /// Settles what counts mean: K certified definite, or M semidefinite, or neither, with a warning. Call
+  /// after prepare(); the safety question calls it only when it has to. `any_origin`: where neither holds, an
+  /// origin below 0 is looked for (kAbove); below it a count is one of directions.
+  Status judge(bool any_origin = false);
 
   /// Taken as judged: K is definite by `why` (both ends of a line definite, say).
   void accept_definite(const Certificate& why);
@@ -75,9 +77,11 @@ class PencilCounter {
   Status judge_massless(const ModelInput& model, const std::vector<Index>& massless);
   Result<CertifiedInertia> certify_apart(ModelInput part);
   Status look_for_common_null_vectors();
-  Status judge_stiffness();
+  Status judge_stiffness(bool any_origin);
+  Result<bool> look_for_origin();
   Status certify_mass();
   double data_error(const PreparedPencil& pencil, double factor) const;
+  CountKind kind_at(double shift) const;
   std::string meaning(double shift) const;
   ShiftCount count_from(double shift, const CertifiedInertia& found, Warnings& warnings) const;
   void rest_on(ShiftCount& count, const Certificate& own) const;
@@ -90,7 +94,9 @@ class PencilCounter {
   std::optional<PreparedPencil> pencil_;
   CountKind kind_ = CountKind::kDirections;
   bool mass_semidefinite_ = false, mass_diagonal_ = false, massless_singular_ = false, mass_judged_ = false;
-  double stiffness_bound_ = 0;  ///< S K S is at least this, when certified definite
+  double stiffness_bound_ =
+      0;               ///< S K S is at least this, when certified definite; kAbove: S (K - origin M) S
+  double origin_ = 0;  ///< kAbove: values below it are not counted
   Index negative_on_massless_ = 0;
   Certificate base_;
   std::optional<CertifiedInertia> stiffness_;

@@ -115,6 +115,69 @@ TEST(Count, FrequenciesWithMasslessDofs) {
   EXPECT_NE(outcome.count->counts[0].meaning.find("strictly below"), std::string::npos);
 }
 
+TEST(Count, AFreeBodyWhoseMassHasNullVectorsOfItsOwnIsCountedFromBelowZero) {
+  // Three dofs in a free chain, one mass that moves with u1 + u2, one with u3: det(K - s M) = -5 s (1 - s)
+  // (by hand), so the values are 0, 1 and an infinite one. M is singular, but no row of it is empty.
+  ModelFiles files;
+  Request request;
+  request.input.stiffness =
+      files.matrix("K.mtx", from_triplets(3, {{0, 0, 1}, {1, 0, -1}, {1, 1, 2}, {2, 1, -1}, {2, 2, 1}}));
+  request.input.mass = files.matrix("M.mtx", from_triplets(3, {{0, 0, 1}, {1, 0, 1}, {1, 1, 1}, {2, 2, 1}}));
+  request.pencil = Pencil::kMass;
+  request.shifts = {1e-3, 0.999, 1.001, 1e6};
+  const Outcome outcome = answer(run_count(request, {}));
+  const Index expected[] = {1, 1, 2, 2};
+  for (std::size_t s = 0; s < 4; ++s) {
+    const ShiftCount& count = outcome.count->counts[s];
+    EXPECT_EQ(count.below, expected[s]) << s;
+    EXPECT_NE(count.meaning.find("above -1e-0"), std::string::npos) << count.meaning;
+    EXPECT_NE(count.meaning.find("strictly below the shift"), std::string::npos);
+    EXPECT_EQ(count.level, Level::kProved);
+  }
+  EXPECT_TRUE(warned(outcome, "mass-not-definite"));
+
+  // At a value only a band is known, and the value is in it; far below the origin nothing is said of values.
+  request.shifts = {1.0, -1.0};
+  const Outcome at = answer(run_count(request, {}));
+  const ShiftCount& near = at.count->counts[0];
+  EXPECT_EQ(near.below_range, (std::pair<Index, Index>{1, 2}));
+  ASSERT_TRUE(near.holds_outside);
+  EXPECT_LE(near.holds_outside->first, 1);
+  EXPECT_GE(near.holds_outside->second, 1);
+  EXPECT_LT(near.holds_outside->second - near.holds_outside->first,
+            0.1);  // rests on a bound of 1e-12 on K + tau M
+  EXPECT_NE(at.count->counts[1].meaning.find("negative directions"), std::string::npos);
+}
+
+TEST(Count, ValuesBelowTheOriginAreNotCounted) {
+  // K = [1 -1; -1 1], M = [1 0; 0 -0.5]: det(K - s M) = -s (1 + s) / 2 (by hand), so the values are 0 and -1.
+  ModelFiles files;
+  Request request;
+  request.input.stiffness = files.matrix("K.mtx", from_triplets(2, {{0, 0, 1}, {1, 0, -1}, {1, 1, 1}}));
+  request.input.mass = files.matrix("M.mtx", diagonal({1, -0.5}));
+  request.pencil = Pencil::kMass;
+  request.shifts = {0.5, 100};
+  const Outcome outcome = answer(run_count(request, {}));
+  for (const ShiftCount& count : outcome.count->counts) {
+    EXPECT_EQ(count.below, 1);
+    EXPECT_NE(count.meaning.find("above -1e-0"), std::string::npos) << count.meaning;
+  }
+}
+
+TEST(Count, NoOriginIsFoundWhereKAndMShareANullVector) {
+  // Nothing holds u1 - u2, neither a spring nor a mass: K - s M is singular at every s (by hand).
+  ModelFiles files;
+  Request request;
+  const SymmetricMatrix both = from_triplets(3, {{0, 0, 1}, {1, 0, 1}, {1, 1, 1}, {2, 2, 1}});
+  request.input.stiffness = files.matrix("K.mtx", both);
+  request.input.mass = files.matrix("M.mtx", both);
+  request.pencil = Pencil::kMass;
+  request.shifts = {0.5};
+  const Outcome outcome = answer(run_count(request, {}));
+  EXPECT_NE(outcome.count->counts[0].meaning.find("negative directions"), std::string::npos);
+  EXPECT_FALSE(outcome.count->counts[0].below);
+}
+
 TEST(Count, CommonNullVectorsOfKAndMAreSaid) {
   ModelFiles files;
   Request request;
