@@ -41,23 +41,23 @@ struct OffsetRun {
 /// The backing of one inertia. Absent members do not apply.
 struct Certificate {
   Level level = Level::kNone;
-  std::optional<std::string> method;      ///< "offsets" or "relative"
-  std::optional<std::string> precision;   ///< "double", "single" or "extended"
-  std::optional<double> resolution;       ///< the offset c, in units of the scaled matrix
-  std::optional<double> error_bound;      ///< largest eta of the runs
-  std::optional<double> relative_bound;   ///< bound on ||F|| of the relative test
+  std::optional<std::string> method;     ///< "offsets" or "relative"
+  std::optional<std::string> precision;  ///< "double", "single" or "extended"
+  std::optional<double> resolution;      ///< the offset c, in units of the scaled matrix
+  std::optional<double> error_bound;     ///< largest eta of the runs
+  std::optional<double> relative_bound;  ///< bound on ||F|| of the relative test
   std::optional<double> failure_probability;
   std::vector<std::string> assumptions;
-  std::optional<double> smallest_eigenvalue_above;  ///< of the scaled matrix, when definite
+  std::optional<double> smallest_eigenvalue_above;       ///< of the scaled matrix, when definite
   std::optional<double> smallest_eigenvalue_of_k_above;  ///< of the matrix itself, when definite
   std::vector<OffsetRun> runs;
 };
 
 /// A vector that shows to anyone that the matrix is not positive definite: one product proves it.
 struct Witness {
-  std::vector<double> x;      ///< one entry per equation of the files, zero where struck
-  double quadratic_form = 0;  ///< x^T A x
-  double error_bound = 0;     ///< of that number; quadratic_form + error_bound < 0
+  std::vector<double> x;                           ///< one entry per equation of the files, zero where struck
+  double quadratic_form = 0;                       ///< x^T A x
+  double error_bound = 0;                          ///< of that number; quadratic_form + error_bound < 0
   std::optional<std::string> path = std::nullopt;  ///< the file it was written to
 };
 
@@ -76,7 +76,8 @@ struct ConstrainedOutcome {
   std::optional<std::pair<Index, Index>> negative_range;
   Backing rank_backing;     ///< of `rank` and `redundant`
   Backing inertia_backing;  ///< of `inertia` or `negative_range`: the weakest of what they follow from
-  std::vector<Index> redundant_equations;  ///< multipliers, from 1 as in the files, whose constraint repeats another
+  std::vector<Index>
+      redundant_equations;  ///< multipliers, from 1 as in the files, whose constraint repeats another
 };
 
 struct CheckOutcome {
@@ -96,9 +97,9 @@ struct ShiftCount {
   Level level = Level::kNone;
   std::optional<std::string> method;
   std::optional<double> failure_probability;
-  std::pair<Index, Index> below_range{0, 0};                 ///< least, most
-  std::optional<std::pair<double, double>> holds_outside;    ///< no statement for true shifts inside
-  std::optional<double> no_eigenvalue_within;                ///< certified distance from the shift, where known
+  std::pair<Index, Index> below_range{0, 0};               ///< least, most
+  std::optional<std::pair<double, double>> holds_outside;  ///< no statement for true shifts inside
+  std::optional<double> no_eigenvalue_within;              ///< certified distance from the shift, where known
   Certificate certificate;
 };
 
@@ -128,9 +129,9 @@ struct SweepOutcome {
 
 /// A mode shape of a bracketed value.
 struct Mode {
-  std::vector<double> shape;    ///< one entry per equation of the files, zero where struck; largest entry 1
-  double rayleigh_quotient = 0; ///< as computed: the value of the pencil that belongs to the shape
-  double residual = 0;          ///< relative, in the energy norm: no further from a value than this
+  std::vector<double> shape;     ///< one entry per equation of the files, zero where struck; largest entry 1
+  double rayleigh_quotient = 0;  ///< as computed: the value of the pencil that belongs to the shape
+  double residual = 0;           ///< relative, in the energy norm: no further from a value than this
 };
 
 /// One eigenvalue, or a group that is not told apart, in an interval that certainly holds it.
@@ -153,8 +154,8 @@ struct CountedRange {
 };
 
 struct BracketOutcome {
-  std::vector<CriticalValue> critical;  ///< ascending
-  std::optional<CountedRange> complete; ///< absent: completeness is not shown
+  std::vector<CriticalValue> critical;   ///< ascending
+  std::optional<CountedRange> complete;  ///< absent: completeness is not shown
   std::optional<CountedRange> other_side;
   std::optional<bool> none_below;  ///< of the range asked; absent when it could not be told
   Index more_than_asked = 0;       ///< a cluster at the end was taken in whole
@@ -175,9 +176,9 @@ struct AuditOutcome {
   AuditVerdict verdict = AuditVerdict::kUnresolved;
   std::vector<AuditGap> gaps;
   CountedRange range;
-  Index listed = 0;           ///< values in the range
-  Index outside = 0;          ///< values left out, outside the range asked
-  std::string proof;          ///< "counts": every stretch between two counts holds as many as are listed
+  Index listed = 0;   ///< values in the range
+  Index outside = 0;  ///< values left out, outside the range asked
+  std::string proof;  ///< "counts": every stretch between two counts holds as many as are listed
   std::vector<CriticalValue> missing;  ///< with find_missing: brackets of what the gaps hold
   std::vector<std::string> sentences;
   bool in_hertz = false;
@@ -202,9 +203,9 @@ struct PathOutcome {
 struct ForecastOutcome {
   Offset factor_entries = 0;
   double factor_flops = 0;
-  Offset peak_bytes_count = 0;  ///< factor discarded
-  Offset peak_bytes_solve = 0;  ///< factor kept
-  double seconds = 0;           ///< of one count, as it is likely to be certified
+  Offset peak_bytes_count = 0;   ///< factor discarded
+  Offset peak_bytes_solve = 0;   ///< factor kept
+  double seconds = 0;            ///< of one count, as it is likely to be certified
   double seconds_otherwise = 0;  ///< when that does not settle it
   double factorization_seconds = 0;
   Index factorizations = 0;     ///< of the likely way
@@ -218,7 +219,7 @@ struct InputRecord {
   std::string path;
   std::string sha256;
   Index rows = 0;
-  Offset entries = 0;  ///< entries of the lower triangle held after reading
+  Offset entries = 0;            ///< entries of the lower triangle held after reading
   std::optional<double> factor;  ///< for "added"
 };
 
@@ -242,9 +243,10 @@ struct MemoryUse {
 
 /// One statistical attempt, charged to the risk before its vectors were drawn, whatever came of it.
 struct RiskEvent {
-  std::optional<double> factor;  ///< of the second matrix in the sum that was tried; absent: K with what is added
-  double charged = 0;            ///< failure probability
-  bool certified = false;        ///< the attempt passed
+  std::optional<double>
+      factor;              ///< of the second matrix in the sum that was tried; absent: K with what is added
+  double charged = 0;      ///< failure probability
+  bool certified = false;  ///< the attempt passed
 };
 
 struct HostRecord {
@@ -252,8 +254,8 @@ struct HostRecord {
   std::string blas, isa;
 };
 
-/// Everything a report needs. Exactly one of check, count, bracket, audit, forecast is present; with `sweep` also count,
-/// with `path` also check (of the step that decides).
+/// Everything a report needs. Exactly one of check, count, bracket, audit, forecast is present; with `sweep`
+/// also count, with `path` also check (of the step that decides).
 struct Outcome {
   std::string command;
   std::vector<std::string> arguments;

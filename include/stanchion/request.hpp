@@ -36,11 +36,12 @@ struct InputRequest {
   bool load_sign_minus = false;  ///< the second matrix was written for K - f G
   bool symmetric_part = false;
   bool strike_held = false;
-  std::optional<int> base;         ///< 0 or 1, for triplet text
-  std::optional<Index> rows;       ///< for triplet text with empty last rows
+  std::optional<int> base;    ///< 0 or 1, for triplet text
+  std::optional<Index> rows;  ///< for triplet text with empty last rows
 };
 
-/// Unit of values and of the ends of ranges; inside everything is in the pencil's own (factor, or s = omega^2).
+/// Unit of values and of the ends of ranges; inside everything is in the pencil's own (factor, or s =
+/// omega^2).
 enum class ValueUnit {
   kFactor,  ///< of K + f G, or eigenvalues of K itself
   kOmega2,  ///< s of K - s M
@@ -49,11 +50,11 @@ enum class ValueUnit {
 
 /// For sweep: where to count.
 struct SweepRequest {
-  double from = 0, to = 0;     ///< in the pencil's unit, from < to
-  Index points = 0;            ///< at least 2, both ends included
-  bool geometric = false;      ///< equal ratios instead of equal steps; both ends of one sign
-  bool refine = false;         ///< new shifts where the count jumps
-  double width = 1e-3;         ///< refine: until a jump is of one, or narrower than this relative width
+  double from = 0, to = 0;  ///< in the pencil's unit, from < to
+  Index points = 0;         ///< at least 2, both ends included
+  bool geometric = false;   ///< equal ratios instead of equal steps; both ends of one sign
+  bool refine = false;      ///< new shifts where the count jumps
+  double width = 1e-3;      ///< refine: until a jump is of one, or narrower than this relative width
 };
 
 /// Which factors of K + f G are asked.
@@ -73,24 +74,24 @@ struct BracketRequest {
   Side side = Side::kPositive;
   ValueUnit unit = ValueUnit::kFactor;
   BracketMethod method = BracketMethod::kResidual;
-  double width = 1e-8;     ///< relative width asked of a bracket
-  bool safety = false;     ///< only whether there is none in the range
-  bool want_modes = false; ///< keep the mode shapes
+  double width = 1e-8;      ///< relative width asked of a bracket
+  bool safety = false;      ///< only whether there is none in the range
+  bool want_modes = false;  ///< keep the mode shapes
 };
 
 /// For audit: somebody's list.
 struct AuditRequest {
-  std::string values;              ///< CSV: value, and optionally tolerance and label
+  std::string values;  ///< CSV: value, and optionally tolerance and label
   ValueUnit unit = ValueUnit::kFactor;
-  std::optional<double> tolerance; ///< relative half width of values that state none
-  std::optional<double> from, to;  ///< range to be judged, in `unit`; absent: that of the list
+  std::optional<double> tolerance;  ///< relative half width of values that state none
+  std::optional<double> from, to;   ///< range to be judged, in `unit`; absent: that of the list
   bool find_missing = false;
 };
 
 /// What `locate` and `check --locate` look for.
 struct LocateOptions {
-  Index most = 12;             ///< directions shown, at most
-  double weak_below = 1e-7;    ///< energy ratio below which a positive direction counts as weak
+  Index most = 12;           ///< directions shown, at most
+  double weak_below = 1e-7;  ///< energy ratio below which a positive direction counts as weak
   double attention_digits = 8, alarm_digits = 12;  ///< levels of the local accuracy, in digits lost
 };
 
@@ -102,17 +103,17 @@ struct Request {
   BracketRequest bracket;
   AuditRequest audit;
   std::vector<std::string> steps;  ///< check: matrices of one pattern after the first, a load path in order
-  int threads = 0;             ///< 0: all processors available
+  int threads = 0;                 ///< 0: all processors available
   std::optional<Offset> memory_cap_bytes;
   std::optional<double> resolution;
   double risk = 1e-6;
   std::optional<int> digits;
   std::uint64_t seed = 1;
   Precision precision = Precision::kDouble;
-  bool want_witness = false;  ///< check: also look for x with x^T A x < 0 beyond its rounding
+  bool want_witness = false;   ///< check: also look for x with x^T A x < 0 beyond its rounding
   bool want_location = false;  ///< check: also where the zero, negative and weak directions are
   LocateOptions locate;
-  bool second_path = false;   ///< another ordering and the plain kernels, to repeat a claim independently
+  bool second_path = false;  ///< another ordering and the plain kernels, to repeat a claim independently
 };
 
 }  // namespace stanchion

@@ -37,25 +37,26 @@ struct Listener {
 /// six otherwise.
 Result<Outcome> check(const Request& request, const Listener& listener = {});
 
-/// As check, and where and why: `located` is set beside `check` unless the inertia is unresolved. Keeps the factor. Errors
-/// as above. Cost: one or two factorizations and some ten solves with eight vectors.
+/// As check, and where and why: `located` is set beside `check` unless the inertia is unresolved. Keeps the
+/// factor. Errors as above. Cost: one or two factorizations and some ten solves with eight vectors.
 Result<Outcome> locate(const Request& request, const Listener& listener = {});
 
 /// Counts at every shift of `request`, in the order asked; `pencil` must agree with the matrices named. The
 /// outcome's `count` is set. Errors as above. Cost: one to six factorizations a shift, one analysis for all.
 Result<Outcome> count(const Request& request, const Listener& listener = {});
 
-/// The staircase of counts over `request.sweep`, side by side where memory allows. The outcome's `count` and `sweep` are
-/// set. Errors as above. Cost: as count, for every shift of the grid and those that refinement adds.
+/// The staircase of counts over `request.sweep`, side by side where memory allows. The outcome's `count` and
+/// `sweep` are set. Errors as above. Cost: as count, for every shift of the grid and those that refinement
+/// adds.
 Result<Outcome> sweep(const Request& request, const Listener& listener = {});
 
-/// The values of `request.bracket`, each in an interval with multiplicity and proof, and how far the list is complete. The
-/// outcome's `bracket` is set. Errors as above. Cost: three to six factorizations and some twenty passes over one that is
-/// kept; by counts alone 30 to 40 factorizations a value.
+/// The values of `request.bracket`, each in an interval with multiplicity and proof, and how far the list is
+/// complete. The outcome's `bracket` is set. Errors as above. Cost: three to six factorizations and some
+/// twenty passes over one that is kept; by counts alone 30 to 40 factorizations a value.
 Result<Outcome> bracket(const Request& request, const Listener& listener = {});
 
-/// Is the list of `request.audit` complete in its range, and is everything in it real? The outcome's `audit` is set.
-/// Errors as above, and those of reading the list. Cost: as bracket.
+/// Is the list of `request.audit` complete in its range, and is everything in it real? The outcome's `audit`
+/// is set. Errors as above, and those of reading the list. Cost: as bracket.
 Result<Outcome> audit(const Request& request, const Listener& listener = {});
 
 /// Factor size, flops, memory and likely time; nothing is factored. The outcome's `forecast` is set.

@@ -25,7 +25,8 @@ class [[nodiscard]] Status {
   Status() = default;
 
   /// `code` is a short stable identifier such as "index-out-of-range"; `place` names file:line, row or entry.
-  Status(StatusKind kind, std::string code, std::string message, std::string place = {}, std::string remedy = {})
+  Status(StatusKind kind, std::string code, std::string message, std::string place = {},
+         std::string remedy = {})
       : kind_(kind),
         code_(std::move(code)),
         message_(std::move(message)),
@@ -39,7 +40,8 @@ class [[nodiscard]] Status {
     return {StatusKind::kBadUsage, std::move(code), std::move(message), std::move(place), std::move(remedy)};
   }
   static Status resource_limit(std::string code, std::string message, std::string place, std::string remedy) {
-    return {StatusKind::kResourceLimit, std::move(code), std::move(message), std::move(place), std::move(remedy)};
+    return {StatusKind::kResourceLimit, std::move(code), std::move(message), std::move(place),
+            std::move(remedy)};
   }
   static Status interrupted() {
     return {StatusKind::kInterrupted, "interrupted", "stopped on request; nothing was half-written", {}, {}};
@@ -73,7 +75,7 @@ class [[nodiscard]] Status {
 template <class T>
 class [[nodiscard]] Result {
  public:
-  Result(T value) : value_(std::move(value)) {}             // NOLINT(google-explicit-constructor)
+  Result(T value) : value_(std::move(value)) {}            // NOLINT(google-explicit-constructor)
   Result(Status failure) : status_(std::move(failure)) {}  // NOLINT(google-explicit-constructor)
 
   bool ok() const { return value_.has_value(); }

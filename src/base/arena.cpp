@@ -22,7 +22,8 @@ double* reserve(Offset doubles) {
 
 Arena::Arena(Offset doubles) {
   doubles = std::max<Offset>(doubles, 512);
-  constexpr Offset kMostDoubles = (Offset{1} << 47) / Offset{sizeof(double)};  // all of a process's address space
+  constexpr Offset kMostDoubles =
+      (Offset{1} << 47) / Offset{sizeof(double)};  // all of a process's address space
   if (doubles > kMostDoubles) throw std::bad_alloc();
   // Delayed pivots may need more than any forecast: ask for eight times as much, settle for less.
   for (const Offset factor : {8, 2, 1}) {
@@ -61,6 +62,8 @@ void Arena::trim() {
   high_water_ = top_;
 }
 
-void Arena::pop_to(const double* mark) { top_ = mark - base_; }
+void Arena::pop_to(const double* mark) {
+  top_ = mark - base_;
+}
 
 }  // namespace stanchion

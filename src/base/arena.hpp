@@ -1,4 +1,5 @@
-// A stack of doubles in reserved address space: grows without moving, pays for pages only when they are touched.
+// A stack of doubles in reserved address space: grows without moving, pays for pages only when they are
+// touched.
 #pragma once
 
 #include <cstddef>
@@ -19,7 +20,8 @@ class Arena {
   Arena(const Arena&) = delete;
   Arena& operator=(const Arena&) = delete;
 
-  /// `count` uninitialised doubles on top of the stack, 64-byte aligned, or null when the reservation is full.
+  /// `count` uninitialised doubles on top of the stack, 64-byte aligned, or null when the reservation is
+  /// full.
   double* push(Offset count);
   /// Everything from `mark` up is free again.
   void pop_to(const double* mark);

@@ -1,5 +1,5 @@
-// Random numbers without a state: a value is a function of a key and a counter, so that any part of a vector can be
-// drawn by any thread, in any order, with the same bits.
+// Random numbers without a state: a value is a function of a key and a counter, so that any part of a vector
+// can be drawn by any thread, in any order, with the same bits.
 #pragma once
 
 #include <array>
@@ -10,8 +10,9 @@
 
 namespace stanchion {
 
-/// Philox 2x64 with ten rounds (Salmon, Moraes, Dror, Shaw, "Parallel random numbers: as easy as 1, 2, 3", SC11).
-/// Every counter of every stream of every key gives two independent uniform words. Immutable: thread safe.
+/// Philox 2x64 with ten rounds (Salmon, Moraes, Dror, Shaw, "Parallel random numbers: as easy as 1, 2, 3",
+/// SC11). Every counter of every stream of every key gives two independent uniform words. Immutable: thread
+/// safe.
 class CounterRandom {
  public:
   explicit CounterRandom(std::uint64_t key, std::uint64_t stream = 0) : key_(key), stream_(stream) {}
@@ -35,7 +36,8 @@ class CounterRandom {
   /// Uniform on the multiples of 2^-53 in [0, 1).
   double uniform(std::uint64_t counter) const { return static_cast<double>(bits(counter) >> 11) * 0x1p-53; }
 
-  /// Two independent standard normal numbers from 53-bit uniforms (Box and Muller, Ann. Math. Stat. 29 (1958)).
+  /// Two independent standard normal numbers from 53-bit uniforms (Box and Muller, Ann. Math. Stat. 29
+  /// (1958)).
   std::pair<double, double> gaussians(std::uint64_t counter) const {
     const auto [first, second] = words(counter);
     const double never_zero = static_cast<double>((first >> 11) + 1) * 0x1p-53;
@@ -45,7 +47,9 @@ class CounterRandom {
   }
 
   /// A key from two numbers, for seeds made of several things; the order matters.
-  static std::uint64_t combine(std::uint64_t a, std::uint64_t b) { return CounterRandom(a, kCombine).bits(b); }
+  static std::uint64_t combine(std::uint64_t a, std::uint64_t b) {
+    return CounterRandom(a, kCombine).bits(b);
+  }
 
  private:
   static constexpr std::uint64_t kCombine = 0x636f6d62696e6521;  ///< a stream that nothing is drawn from

@@ -12,7 +12,9 @@ namespace {
 /// other within microseconds, where a sleep and wake-up would cost more than the work.
 constexpr int kSpins = 20000;
 
-inline void relax() { __builtin_ia32_pause(); }
+inline void relax() {
+  __builtin_ia32_pause();
+}
 
 /// Polls of an idle worker before it dozes, so that it costs little where others need the processor.
 constexpr int kIdlePolls = 50000;
@@ -27,7 +29,8 @@ thread_local Inside inside;
 
 }  // namespace
 
-ThreadPool::ThreadPool(int threads) : shared_loops_(std::make_unique<SharedLoop[]>(static_cast<std::size_t>(threads))) {
+ThreadPool::ThreadPool(int threads)
+    : shared_loops_(std::make_unique<SharedLoop[]>(static_cast<std::size_t>(threads))) {
   for (int worker = 1; worker < threads; ++worker) {
     workers_.emplace_back([this, worker] { worker_loop(worker); });
   }
@@ -77,7 +80,8 @@ void ThreadPool::assist(int worker) {
     for (int other = 0; other < size(); ++other) {
       SharedLoop& loop = shared_loops_[static_cast<std::size_t>(other)];
       if (other == worker || !loop.open.load()) continue;
-      // The owner waits for helpers after it closes; one that came too late sees that and leaves the loop alone.
+      // The owner waits for helpers after it closes; one that came too late sees that and leaves the loop
+      // alone.
       loop.helpers.fetch_add(1);
       if (loop.open.load()) {
         loop.drain();
@@ -132,7 +136,9 @@ void ThreadPool::worker_loop(int worker) {
   }
 }
 
-void ThreadPool::run(Offset pieces, const std::function<void(Offset, int)>& work) { start(pieces, work, false); }
+void ThreadPool::run(Offset pieces, const std::function<void(Offset, int)>& work) {
+  start(pieces, work, false);
+}
 
 void ThreadPool::run_sharing(Offset pieces, const std::function<void(Offset, int)>& work) {
   start(pieces, work, true);

@@ -1,4 +1,5 @@
-// The one pool of threads: fork-join loops over numbered pieces of work, and loops inside pieces that idle workers join.
+// The one pool of threads: fork-join loops over numbered pieces of work, and loops inside pieces that idle
+// workers join.
 #pragma once
 
 #include <atomic>
@@ -30,12 +31,13 @@ class ThreadPool {
   /// the others have finished. Which worker gets a piece is not reproducible: results must not depend on it.
   void run(Offset pieces, const std::function<void(Offset piece, int worker)>& work);
 
-  /// The same, but workers that find no piece left take part in what the others share, until all are done. Meanwhile
-  /// they poll, then doze: for pieces that run long.
+  /// The same, but workers that find no piece left take part in what the others share, until all are done.
+  /// Meanwhile they poll, then doze: for pieces that run long.
   void run_sharing(Offset pieces, const std::function<void(Offset piece, int worker)>& work);
 
-  /// Calls `work(piece)` for each piece in [0, pieces) and returns when all are done, exceptions as in `run`. Inside a
-  /// piece of run_sharing the workers that are idle there take part; inside one of run nobody does; outside, everyone.
+  /// Calls `work(piece)` for each piece in [0, pieces) and returns when all are done, exceptions as in `run`.
+  /// Inside a piece of run_sharing the workers that are idle there take part; inside one of run nobody does;
+  /// outside, everyone.
   void share(Offset pieces, const std::function<void(Offset piece)>& work);
 
  private:
@@ -67,7 +69,7 @@ class ThreadPool {
   std::atomic<int> busy_{0};
   const std::function<void(Offset, int)>* work_ = nullptr;
   bool sharing_ = false;
-  std::atomic<Offset> unfinished_{0};          ///< pieces of a sharing loop that have not ended
+  std::atomic<Offset> unfinished_{0};           ///< pieces of a sharing loop that have not ended
   std::unique_ptr<SharedLoop[]> shared_loops_;  ///< one a worker
   std::exception_ptr failure_;
 };

@@ -6,7 +6,9 @@ namespace {
 class AuditCommand : public QuestionCommand {
  public:
   AuditCommand() : QuestionCommand(Question::kAudit, run_audit) {}
-  const char* summary() const override { return "is somebody's list of values complete, and is everything in it real"; }
+  const char* summary() const override {
+    return "is somebody's list of values complete, and is everything in it real";
+  }
   void declare(Arguments& arguments) override;
 };
 

@@ -6,7 +6,9 @@ namespace {
 class BracketCommand : public QuestionCommand {
  public:
   BracketCommand() : QuestionCommand(Question::kBracket, run_bracket) {}
-  const char* summary() const override { return "critical factors or frequencies, each in an interval that is proved"; }
+  const char* summary() const override {
+    return "critical factors or frequencies, each in an interval that is proved";
+  }
   void declare(Arguments& arguments) override;
 };
 

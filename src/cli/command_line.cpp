@@ -28,8 +28,8 @@ void Arguments::positional(const std::string& name, std::optional<std::string>& 
   parser_->app->add_option(name, target, help)->type_name(value)->required(required);
 }
 
-void Arguments::positionals(const std::string& name, std::vector<std::string>& target, const std::string& value,
-                            const std::string& help) {
+void Arguments::positionals(const std::string& name, std::vector<std::string>& target,
+                            const std::string& value, const std::string& help) {
   parser_->app->add_option(name, target, help)->type_name(value)->expected(-1);
 }
 

@@ -41,11 +41,14 @@ InterruptGuard::~InterruptGuard() {
 
 }  // namespace stanchion::cli
 
-// METIS puts a handler of its own on SIGTERM while it runs, which jumps out of whatever was interrupted: out of the
-// allocator too, whose lock then stays taken for ever. It calls signal() as System V has it, and finds this one first:
-// while a guard lives the two signals stay as they are, and otherwise it does what the C library would.
-extern "C" __sighandler_t __sysv_signal(int number, __sighandler_t handler) noexcept {  // NOLINT(bugprone-reserved-identifier)
-  struct sigaction action {}, before {};
+// METIS puts a handler of its own on SIGTERM while it runs, which jumps out of whatever was interrupted: out
+// of the allocator too, whose lock then stays taken for ever. It calls signal() as System V has it, and finds
+// this one first: while a guard lives the two signals stay as they are, and otherwise it does what the C
+// library would.
+extern "C" __sighandler_t __sysv_signal(
+    int number, __sighandler_t handler) noexcept {  // NOLINT(bugprone-reserved-identifier)
+  struct sigaction action {
+  }, before{};
   const bool ours = number == SIGINT || number == SIGTERM;
   if (ours && stanchion::cli::guarded_token.load() != nullptr) {
     return sigaction(number, nullptr, &before) == 0 ? before.sa_handler : SIG_ERR;

@@ -63,9 +63,10 @@ std::string csv_of(const std::vector<NamedMode>& modes, const std::optional<DofM
   for (std::size_t k = 0; k < modes.size(); ++k) {
     const CriticalValue& value = *modes[k].value;
     const Mode& mode = *modes[k].mode;
-    text += fmt::format("# mode {}: a value in [{}, {}], which holds {}; Rayleigh quotient {}, relative residual {}\n", k + 1,
-                        number_text(value.low), number_text(value.high), value.multiplicity,
-                        number_text(mode.rayleigh_quotient), number_text(mode.residual));
+    text += fmt::format(
+        "# mode {}: a value in [{}, {}], which holds {}; Rayleigh quotient {}, relative residual {}\n", k + 1,
+        number_text(value.low), number_text(value.high), value.multiplicity,
+        number_text(mode.rayleigh_quotient), number_text(mode.residual));
   }
   text += map ? "equation,node,dof" : "equation";
   for (std::size_t k = 0; k < modes.size(); ++k) text += fmt::format(",mode{}", k + 1);
@@ -92,7 +93,8 @@ using Vector = std::array<double, 3>;
 
 /// Displacements of every listed node in global directions.
 std::vector<Vector> displacements(const Mode& mode, const DofMap& map, const NodeTable& nodes,
-                                  const std::unordered_map<NodeNumber, std::size_t>& place, const AxesTable* axes) {
+                                  const std::unordered_map<NodeNumber, std::size_t>& place,
+                                  const AxesTable* axes) {
   std::vector<Vector> moved(static_cast<std::size_t>(nodes.size()), Vector{});
   for (Index equation = 0; equation < map.equations(); ++equation) {
     const auto at = place.find(map.node(equation));
@@ -103,7 +105,8 @@ std::vector<Vector> displacements(const Mode& mode, const DofMap& map, const Nod
     const double entry = mode.shape[static_cast<std::size_t>(equation)];
     const std::array<double, 9>* own = axes != nullptr ? axes->find(map.node(equation)) : nullptr;
     for (int k = 0; k < 3; ++k) {
-      const double cosine = own != nullptr ? (*own)[static_cast<std::size_t>(3 * axis + k)] : (k == axis ? 1.0 : 0.0);
+      const double cosine =
+          own != nullptr ? (*own)[static_cast<std::size_t>(3 * axis + k)] : (k == axis ? 1.0 : 0.0);
       moved[at->second][static_cast<std::size_t>(k)] += cosine * entry;
     }
   }
@@ -121,7 +124,8 @@ void append_vectors(std::string& text, const std::vector<Vector>& vectors) {
   }
 }
 
-std::string grid_of(const std::vector<NamedMode>& modes, const DofMap& map, const NodeTable& nodes, const AxesTable* axes) {
+std::string grid_of(const std::vector<NamedMode>& modes, const DofMap& map, const NodeTable& nodes,
+                    const AxesTable* axes) {
   std::unordered_map<NodeNumber, std::size_t> place;
   std::vector<Vector> points;
   for (Offset i = 0; i < nodes.size(); ++i) {
@@ -130,18 +134,21 @@ std::string grid_of(const std::vector<NamedMode>& modes, const DofMap& map, cons
   }
   const std::size_t count = points.size();
   std::string text = fmt::format(
-      "<?xml version=\"1.0\"?>\n<VTKFile type=\"UnstructuredGrid\" version=\"0.1\" byte_order=\"LittleEndian\">\n"
+      "<?xml version=\"1.0\"?>\n<VTKFile type=\"UnstructuredGrid\" version=\"0.1\" "
+      "byte_order=\"LittleEndian\">\n"
       "<UnstructuredGrid>\n<Piece NumberOfPoints=\"{0}\" NumberOfCells=\"{0}\">\n<PointData>\n",
       count);
   for (std::size_t k = 0; k < modes.size(); ++k) {
-    text += fmt::format("<DataArray type=\"Float64\" NumberOfComponents=\"3\" format=\"ascii\" Name=\"mode {}: {:.10g}\">\n",
-                        k + 1, modes[k].mode->rayleigh_quotient);
+    text += fmt::format(
+        "<DataArray type=\"Float64\" NumberOfComponents=\"3\" format=\"ascii\" Name=\"mode {}: {:.10g}\">\n",
+        k + 1, modes[k].mode->rayleigh_quotient);
     append_vectors(text, displacements(*modes[k].mode, map, nodes, place, axes));
     text += "</DataArray>\n";
   }
   text += "</PointData>\n<Points>\n<DataArray type=\"Float64\" NumberOfComponents=\"3\" format=\"ascii\">\n";
   append_vectors(text, points);
-  text += "</DataArray>\n</Points>\n<Cells>\n<DataArray type=\"Int64\" Name=\"connectivity\" format=\"ascii\">\n";
+  text +=
+      "</DataArray>\n</Points>\n<Cells>\n<DataArray type=\"Int64\" Name=\"connectivity\" format=\"ascii\">\n";
   for (std::size_t i = 0; i < count; ++i) text += fmt::format("{}\n", i);
   text += "</DataArray>\n<DataArray type=\"Int64\" Name=\"offsets\" format=\"ascii\">\n";
   for (std::size_t i = 1; i <= count; ++i) text += fmt::format("{}\n", i);
@@ -152,7 +159,8 @@ std::string grid_of(const std::vector<NamedMode>& modes, const DofMap& map, cons
 
 }  // namespace
 
-Result<std::string> mode_table(const BracketOutcome& bracket, const InputRequest& input, const std::string& path) {
+Result<std::string> mode_table(const BracketOutcome& bracket, const InputRequest& input,
+                               const std::string& path) {
   if (has_extension(path, ".npy")) return npy_of(modes_of(bracket));
   const auto map = read_map(input);
   if (!map.ok()) return map.status();

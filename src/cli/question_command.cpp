@@ -41,11 +41,13 @@ void declare_output_options(Arguments& arguments, OutputOptions& options, Questi
   }
   arguments.text("--json", options.json, "FILE",
                  "the whole answer as JSON; - for standard output, nothing else");
-  arguments.text("--html", options.html, "FILE", "one page for the screen and for paper, with drawings; stands alone");
+  arguments.text("--html", options.html, "FILE",
+                 "one page for the screen and for paper, with drawings; stands alone");
   arguments.text("--junit", options.junit, "FILE", "JUnit XML, for build servers");
   arguments.text("--csv", options.csv, "FILE", "the numbers as one table");
   if (question == Question::kCheck || question == Question::kLocate) {
-    arguments.text("--vtu", options.vtu, "FILE", "nodes, links, motions and digits as a VTK grid (needs --nodes)");
+    arguments.text("--vtu", options.vtu, "FILE",
+                   "nodes, links, motions and digits as a VTK grid (needs --nodes)");
   }
   if (question == Question::kCheck || question == Question::kCount) {
     arguments.text("--certificate", options.certificate, "FILE",
@@ -57,11 +59,13 @@ void declare_output_options(Arguments& arguments, OutputOptions& options, Questi
   }
   if (question == Question::kSweep) {
     arguments.text("--svg", options.svg, "FILE", "the staircase as a picture");
-    arguments.text("--results", options.results, "FILE", "every count as it comes; an interrupted sweep goes on from it");
+    arguments.text("--results", options.results, "FILE",
+                   "every count as it comes; an interrupted sweep goes on from it");
   }
   if (question == Question::kBracket) {
     arguments.text("--modes", options.modes, "FILE", "the mode shapes as CSV, or as a NumPy array (.npy)");
-    arguments.text("--vtu", options.vtu, "FILE", "the mode shapes on the nodes, as VTK XML; needs --nodes and --dofs");
+    arguments.text("--vtu", options.vtu, "FILE",
+                   "the mode shapes on the nodes, as VTK XML; needs --nodes and --dofs");
   }
   arguments.flag("--quiet", options.quiet, "no text on standard output, no progress line");
   arguments.text("--log", options.log, "FILE", "one line a stage; - for standard error");
@@ -98,10 +102,9 @@ Status open_targets(const OutputOptions& output, const Request& request, Targets
   if (!request.audit.values.empty()) read.push_back(request.audit.values);
   for (const Status& status :
        {refuse_dash("--certificate", output.certificate), refuse_dash("--witness", output.witness),
-        refuse_dash("--html", output.html), refuse_dash("--junit", output.junit), refuse_dash("--csv", output.csv),
-        refuse_dash("--vtu", output.vtu),
-        refuse_dash("--svg", output.svg), refuse_dash("--results", output.results),
-        refuse_dash("--modes", output.modes),
+        refuse_dash("--html", output.html), refuse_dash("--junit", output.junit),
+        refuse_dash("--csv", output.csv), refuse_dash("--vtu", output.vtu), refuse_dash("--svg", output.svg),
+        refuse_dash("--results", output.results), refuse_dash("--modes", output.modes),
         check_targets_differ({{"--json", output.json},
                               {"--html", output.html},
                               {"--junit", output.junit},
@@ -163,8 +166,10 @@ Status deliver_witness(const OutputOptions& output, const std::optional<std::str
 /// The grid, or a warning that there is nothing to put on it; the file then does not appear.
 Status deliver_grid(const OutputOptions& output, Targets& targets, Outcome& outcome) {
   if (!targets.vtu || outcome.bracket) return {};
-  if (outcome.located && !outcome.located->picture.node.empty()) return targets.vtu->commit(to_vtu(*outcome.located));
-  const Warning none{"no-grid", "there is nothing to put on a grid: no coordinates are known, or nothing was certified",
+  if (outcome.located && !outcome.located->picture.node.empty())
+    return targets.vtu->commit(to_vtu(*outcome.located));
+  const Warning none{"no-grid",
+                     "there is nothing to put on a grid: no coordinates are known, or nothing was certified",
                      *output.vtu + " (not written)"};
   outcome.warnings.push_back(none);
   if (output.quiet) print_failure({StatusKind::kOk, none.code, none.message, none.place});
@@ -178,13 +183,15 @@ Status deliver_reports(Targets& targets, const Outcome& outcome, ExitCode code) 
     if (Status status = targets.html->commit(to_html(outcome, good, unresolved)); !status.ok()) return status;
   }
   if (targets.junit) {
-    if (Status status = targets.junit->commit(to_junit(outcome, good, unresolved)); !status.ok()) return status;
+    if (Status status = targets.junit->commit(to_junit(outcome, good, unresolved)); !status.ok())
+      return status;
   }
   return targets.csv ? targets.csv->commit(to_csv(outcome)) : Status{};
 }
 
 /// Writes the shapes, or says that there are none; the files then do not appear.
-Status deliver_modes(const Request& request, const OutputOptions& output, Targets& targets, Outcome& outcome) {
+Status deliver_modes(const Request& request, const OutputOptions& output, Targets& targets,
+                     Outcome& outcome) {
   if (!outcome.bracket || (!targets.modes && !targets.vtu)) return {};
   const BracketOutcome& bracket = *outcome.bracket;
   const bool any = std::any_of(bracket.critical.begin(), bracket.critical.end(),
@@ -224,7 +231,8 @@ Status check_outputs(const Request& request, const OutputOptions& output, Questi
   return {};
 }
 
-Status deliver(const Request& request, const OutputOptions& output, Targets& targets, Outcome& outcome, ExitCode code) {
+Status deliver(const Request& request, const OutputOptions& output, Targets& targets, Outcome& outcome,
+               ExitCode code) {
   if (Status status = deliver_witness(output, request.input.dofs, targets, outcome); !status.ok())
     return status;
   if (targets.certificate) {

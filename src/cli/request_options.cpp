@@ -14,13 +14,16 @@ namespace {
 
 void declare_matrices(Arguments& arguments, RequestOptions& options, Question question) {
   arguments.positional("K", options.stiffness, "FILE",
-                       "the stiffness matrix; its format is found from its content", question != Question::kCheck);
+                       "the stiffness matrix; its format is found from its content",
+                       question != Question::kCheck);
   if (question == Question::kCheck) {
-    arguments.positionals("steps", options.steps, "FILE", "more matrices of one pattern: a load path, in order");
+    arguments.positionals("steps", options.steps, "FILE",
+                          "more matrices of one pattern: a load path, in order");
   }
   arguments.group("Matrices");
   if (question == Question::kLocate) {
-    arguments.text("--mass", options.mass, "FILE", "mass M, matrix or diagonal: its total and centre are stated");
+    arguments.text("--mass", options.mass, "FILE",
+                   "mass M, matrix or diagonal: its total and centre are stated");
   } else if (question == Question::kCheck) {
     arguments.text("--list", options.list, "FILE", "the matrices of a load path, one path a line, in order");
   } else {
@@ -69,7 +72,8 @@ void declare_numbers(Arguments& arguments, RequestOptions& options, Question que
 void declare_location(Arguments& arguments, RequestOptions& options, Question question) {
   arguments.group("Location");
   if (question == Question::kCheck) {
-    arguments.flag("--locate", options.locate, "also where and why: nodes and dofs of zero, negative, weak directions");
+    arguments.flag("--locate", options.locate,
+                   "also where and why: nodes and dofs of zero, negative, weak directions");
   }
   arguments.whole("--most", options.most, "N", "entries shown at most (default 12)");
   arguments.real("--weak-below", options.weak_below, "r",
@@ -135,7 +139,8 @@ Status fill_numbers(const RequestOptions& options, Request& request) {
   }
   if (options.precision) {
     if (*options.precision != "double" && *options.precision != "extended") {
-      return Status::bad_usage("bad-precision", fmt::format("'{}' is neither double nor extended", *options.precision),
+      return Status::bad_usage("bad-precision",
+                               fmt::format("'{}' is neither double nor extended", *options.precision),
                                "--precision", "leave it out for double precision, or ask for extended");
     }
     request.precision = *options.precision == "extended" ? Precision::kExtended : Precision::kDouble;
@@ -187,11 +192,13 @@ Status fill_input(const RequestOptions& options, InputRequest& input) {
   return {};
 }
 
-/// The paths of a list, one a line; relative ones beside the list. Blank lines and those that begin with # are passed over.
+/// The paths of a list, one a line; relative ones beside the list. Blank lines and those that begin with #
+/// are passed over.
 Result<std::vector<std::string>> read_path_list(const std::string& list) {
   std::ifstream file(list);
   if (!file) {
-    return Status::bad_input("file-not-found", "the list cannot be read", list, "name a file with one path a line");
+    return Status::bad_input("file-not-found", "the list cannot be read", list,
+                             "name a file with one path a line");
   }
   std::vector<std::string> paths;
   for (std::string line; std::getline(file, line);) {
@@ -199,9 +206,11 @@ Result<std::vector<std::string>> read_path_list(const std::string& list) {
     const auto begin = line.find_first_not_of(" \t\r");
     if (begin == std::string::npos || line[begin] == '#') continue;
     const std::filesystem::path path = line.substr(begin, end - begin + 1);
-    paths.push_back(path.is_absolute() ? path.string() : (std::filesystem::path(list).parent_path() / path).string());
+    paths.push_back(path.is_absolute() ? path.string()
+                                       : (std::filesystem::path(list).parent_path() / path).string());
   }
-  if (paths.empty()) return Status::bad_input("empty-file", "the list names no matrix", list, "write one path a line");
+  if (paths.empty())
+    return Status::bad_input("empty-file", "the list names no matrix", list, "write one path a line");
   return paths;
 }
 
@@ -230,7 +239,8 @@ void declare_request_options(Arguments& arguments, RequestOptions& options, Ques
   }
   declare_spectrum_options(arguments, options.spectrum, question);
   declare_model_files(arguments, options);
-  if (question == Question::kCheck || question == Question::kLocate) declare_location(arguments, options, question);
+  if (question == Question::kCheck || question == Question::kLocate)
+    declare_location(arguments, options, question);
   declare_numbers(arguments, options, question);
 }
 

@@ -29,16 +29,19 @@ void declare_bracket(Arguments& arguments, SpectrumOptions& options) {
                  "with --first: which factors of K + f G (default positive)");
   arguments.text("--unit", options.unit, "omega2|hertz", "frequencies: unit of the range and of the answer");
   arguments.real("--width", options.width, "W", "relative width asked of a bracket (default 1e-8)");
-  arguments.text("--method", options.method, "residual|counts",
-                 "residual (default): intervals from mode shapes, counts at the ends; counts: bisection alone");
+  arguments.text(
+      "--method", options.method, "residual|counts",
+      "residual (default): intervals from mode shapes, counts at the ends; counts: bisection alone");
 }
 
 void declare_audit(Arguments& arguments, SpectrumOptions& options) {
   arguments.text("--values", options.values, "FILE", "the list: value, optionally tolerance and label");
-  arguments.text("--unit", options.unit, "factor|omega2|hertz", "of the list (default: factor, or omega2 with --mass)");
+  arguments.text("--unit", options.unit, "factor|omega2|hertz",
+                 "of the list (default: factor, or omega2 with --mass)");
   arguments.real("--tolerance", options.tolerance, "T",
                  "relative tolerance of values that state none (default 1e-6)");
-  arguments.real("--from", options.from, "A", "judge the list from here (default: from 0, or the lowest) ...");
+  arguments.real("--from", options.from, "A",
+                 "judge the list from here (default: from 0, or the lowest) ...");
   arguments.real("--to", options.to, "B", "... to here (default: where it ends)");
   arguments.flag("--find-missing", options.find_missing, "bracket what the list lacks");
 }
@@ -56,7 +59,8 @@ Status choose(const char* option, const std::optional<std::string>& word,
     }
     known += (known.empty() ? "" : ", ") + std::string(name);
   }
-  return Status::bad_usage("bad-word", fmt::format("'{}' is not known here", *word), option, "write one of: " + known);
+  return Status::bad_usage("bad-word", fmt::format("'{}' is not known here", *word), option,
+                           "write one of: " + known);
 }
 
 Status narrow(const char* option, std::int64_t value, Index& member) {
@@ -81,7 +85,8 @@ Status fill_sweep(const SpectrumOptions& options, SweepRequest& sweep) {
   }
   sweep.refine = options.refine;
   if (options.width) sweep.width = *options.width;
-  return choose<bool>("--spacing", options.spacing, {{"linear", false}, {"geometric", true}}, sweep.geometric);
+  return choose<bool>("--spacing", options.spacing, {{"linear", false}, {"geometric", true}},
+                      sweep.geometric);
 }
 
 Status fill_bracket(const SpectrumOptions& options, bool mass, BracketRequest& bracket) {
@@ -94,7 +99,8 @@ Status fill_bracket(const SpectrumOptions& options, bool mass, BracketRequest& b
   bracket.to = options.to;
   if (options.below) {
     if (options.from || options.to) {
-      return Status::bad_usage("contradiction", "--below is a range of its own", "--below", "give --below, or --from and --to");
+      return Status::bad_usage("contradiction", "--below is a range of its own", "--below",
+                               "give --below, or --from and --to");
     }
     bracket.below = true;
     (*options.below < 0 && !mass ? bracket.from : bracket.to) = *options.below;
@@ -102,12 +108,16 @@ Status fill_bracket(const SpectrumOptions& options, bool mass, BracketRequest& b
   if (options.width) bracket.width = *options.width;
   bracket.unit = mass ? ValueUnit::kOmega2 : ValueUnit::kFactor;
   for (const Status& status :
-       {choose<ValueUnit>("--unit", options.unit, {{"factor", ValueUnit::kFactor}, {"omega2", ValueUnit::kOmega2}, {"hertz", ValueUnit::kHertz}},
-                          bracket.unit),
+       {choose<ValueUnit>(
+            "--unit", options.unit,
+            {{"factor", ValueUnit::kFactor}, {"omega2", ValueUnit::kOmega2}, {"hertz", ValueUnit::kHertz}},
+            bracket.unit),
         choose<Side>("--side", options.side,
-                     {{"positive", Side::kPositive}, {"negative", Side::kNegative}, {"both", Side::kBoth}}, bracket.side),
+                     {{"positive", Side::kPositive}, {"negative", Side::kNegative}, {"both", Side::kBoth}},
+                     bracket.side),
         choose<BracketMethod>("--method", options.method,
-                              {{"residual", BracketMethod::kResidual}, {"counts", BracketMethod::kCounts}}, bracket.method)}) {
+                              {{"residual", BracketMethod::kResidual}, {"counts", BracketMethod::kCounts}},
+                              bracket.method)}) {
     if (!status.ok()) return status;
   }
   return {};
@@ -122,7 +132,8 @@ Status fill_audit(const SpectrumOptions& options, bool mass, AuditRequest& audit
   audit.unit = mass ? ValueUnit::kOmega2 : ValueUnit::kFactor;
   return choose<ValueUnit>(
       "--unit", options.unit,
-      {{"factor", ValueUnit::kFactor}, {"omega2", ValueUnit::kOmega2}, {"hertz", ValueUnit::kHertz}}, audit.unit);
+      {{"factor", ValueUnit::kFactor}, {"omega2", ValueUnit::kOmega2}, {"hertz", ValueUnit::kHertz}},
+      audit.unit);
 }
 
 }  // namespace

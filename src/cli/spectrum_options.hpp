@@ -21,8 +21,8 @@ struct SpectrumOptions {
 
 void declare_spectrum_options(Arguments& arguments, SpectrumOptions& options, Question question);
 
-/// Fills the part of `request` that `question` reads; its pencil is known already. Bad usage for words that are not
-/// known; ranges are checked by model/validate.hpp.
+/// Fills the part of `request` that `question` reads; its pencil is known already. Bad usage for words that
+/// are not known; ranges are checked by model/validate.hpp.
 Status fill_spectrum(const SpectrumOptions& options, Question question, Request& request);
 
 }  // namespace stanchion::cli

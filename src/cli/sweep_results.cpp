@@ -28,12 +28,13 @@ Result<std::vector<JournalEntry>> SweepResults::open(const Outcome& begun) {
   text.erase(text.find_last_of('\n') + 1);  // a line that was cut off
   std::error_code failure;
   if (!text.empty()) std::filesystem::resize_file(path_, text.size(), failure);
-  file_ = std::shared_ptr<std::FILE>(failure ? nullptr : std::fopen(path_.c_str(), text.empty() ? "we" : "ae"),
-                                     [](std::FILE* file) {
-                                       if (file != nullptr) std::fclose(file);
-                                     });
+  file_ = std::shared_ptr<std::FILE>(
+      failure ? nullptr : std::fopen(path_.c_str(), text.empty() ? "we" : "ae"), [](std::FILE* file) {
+        if (file != nullptr) std::fclose(file);
+      });
   if (!file_) {
-    return Status::bad_usage("cannot-write", std::string("the file cannot be written: ") + std::strerror(errno), path_,
+    return Status::bad_usage("cannot-write",
+                             std::string("the file cannot be written: ") + std::strerror(errno), path_,
                              "name a file in an existing folder that you may write to");
   }
   if (text.empty()) {
@@ -54,8 +55,9 @@ Status SweepResults::write(const std::string& line) {
   const std::string whole = line + "\n";
   const bool written = std::fwrite(whole.data(), 1, whole.size(), file_.get()) == whole.size();
   if (written && std::fflush(file_.get()) == 0) return {};
-  return Status::resource_limit("write-failed", std::string("the file could not be written: ") + std::strerror(errno),
-                                path_, "name a place that can take it");
+  return Status::resource_limit("write-failed",
+                                std::string("the file could not be written: ") + std::strerror(errno), path_,
+                                "name a place that can take it");
 }
 
 }  // namespace stanchion::cli

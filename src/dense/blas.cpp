@@ -3,9 +3,9 @@
 #include <dlfcn.h>
 
 extern "C" {
-void dgemm_(const char* transa, const char* transb, const int* m, const int* n, const int* k, const double* alpha,
-            const double* a, const int* lda, const double* b, const int* ldb, const double* beta, double* c,
-            const int* ldc);
+void dgemm_(const char* transa, const char* transb, const int* m, const int* n, const int* k,
+            const double* alpha, const double* a, const int* lda, const double* b, const int* ldb,
+            const double* beta, double* c, const int* ldc);
 }
 
 namespace stanchion {

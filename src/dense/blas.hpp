@@ -7,7 +7,8 @@
 
 namespace stanchion {
 
-/// C = alpha A B^T + beta C, column-major; A m x k, B n x k, C m x n. Any summation order over k, no Strassen.
+/// C = alpha A B^T + beta C, column-major; A m x k, B n x k, C m x n. Any summation order over k, no
+/// Strassen.
 void gemm_nt(Index m, Index n, Index k, double alpha, const double* a, Index lda, const double* b, Index ldb,
              double beta, double* c, Index ldc);
 

@@ -7,8 +7,9 @@
 
 namespace stanchion {
 
-/// Where the entries of a block-lower matrix lie. Columns are cut into blocks of `width`; a block holds its rows
-/// from its own first column down, column by column. The small upper triangle inside a block is never read.
+/// Where the entries of a block-lower matrix lie. Columns are cut into blocks of `width`; a block holds its
+/// rows from its own first column down, column by column. The small upper triangle inside a block is never
+/// read.
 ///
 /// Example, order 5, width 2 (leading dimensions are not padded in this picture):
 ///   block 0: rows 0-4 of columns 0, 1; block 1: rows 2-4 of columns 2, 3; block 2: row 4 of column 4.
@@ -56,8 +57,11 @@ inline BlockLayout contribution_layout(Index order) {
   return {order, std::clamp<Index>((order / 8 + 15) / 16 * 16, 16, kFrontBlock)};
 }
 
-/// Doubles of a waiting contribution block: its entries, its row bounds, its row sums, its images and their bounds.
-inline Offset contribution_doubles(Index order) { return contribution_layout(order).size() + 4 * Offset{order}; }
+/// Doubles of a waiting contribution block: its entries, its row bounds, its row sums, its images and their
+/// bounds.
+inline Offset contribution_doubles(Index order) {
+  return contribution_layout(order).size() + 4 * Offset{order};
+}
 
 /// A block-lower matrix: layout and storage (not owned).
 struct BlockLower {

@@ -8,7 +8,8 @@ namespace {
 
 constexpr Index kPieceRows = kFrontBlock;  ///< rows beyond the panel handled as one piece
 constexpr double kUnit = 0x1p-53;
-// Parts of the sums over columns of a tile: of |L|, of |A21|, of L with the signs of the fault vector; the largest |w|.
+// Parts of the sums over columns of a tile: of |L|, of |A21|, of L with the signs of the fault vector; the
+// largest |w|.
 constexpr Index kSizes = 0, kOperand = kTileWidth, kSigned = 2 * kTileWidth, kSums = 3 * kTileWidth;
 constexpr Index kLargest = kSums, kParts = 4 * kTileWidth;
 
@@ -22,7 +23,8 @@ struct Panel {
 
 class FrontEliminator {
  public:
-  FrontEliminator(const Front& front, const EliminationOptions& options, EliminationScratch& scratch, ThreadPool* team)
+  FrontEliminator(const Front& front, const EliminationOptions& options, EliminationScratch& scratch,
+                  ThreadPool* team)
       : front_(front),
         layout_(front_.matrix.layout),
         options_(options),
@@ -72,7 +74,8 @@ class FrontEliminator {
   double* inverse() { return scratch_.inverse.data(); }
   Index leading(const Panel& panel) const { return layout_.leading_dimension(layout_.block_of(panel.begin)); }
   PivotArrays pivots_at(Index column) const {
-    return {front_.pivots.diagonal + column, front_.pivots.off_diagonal + column, front_.pivots.kind + column};
+    return {front_.pivots.diagonal + column, front_.pivots.off_diagonal + column,
+            front_.pivots.kind + column};
   }
 
   /// Takes tiles until every column of the panel is a pivot or has failed. False: stopped or not finite.
@@ -144,8 +147,8 @@ class FrontEliminator {
     return found;
   }
 
-  // The rows below a tile are worked on in pieces: piece 0 is the rest of the panel, from `below` on; the others lie
-  // beyond it, from the first strip of beyond_ on.
+  // The rows below a tile are worked on in pieces: piece 0 is the rest of the panel, from `below` on; the
+  // others lie beyond it, from the first strip of beyond_ on.
   struct PieceRows {
     Index begin, end;
     bool inside;
@@ -207,8 +210,8 @@ class FrontEliminator {
     return found;
   }
 
-  /// L = W D^-1 for all rows below, and the sums that the bounds need: column sums of |L| and of L with signs, of |A21|
-  /// (the operand that was multiplied), and its weighted row sums into the row bounds.
+  /// L = W D^-1 for all rows below, and the sums that the bounds need: column sums of |L| and of L with
+  /// signs, of |A21| (the operand that was multiplied), and its weighted row sums into the row bounds.
   void divide(const Panel& panel, Index below, Index accepted, const double* weight) {
     const Index at = panel.next;
     const Offset count = pieces(panel);
@@ -217,13 +220,13 @@ class FrontEliminator {
       double* sums = part(piece);
       std::fill_n(sums, kSums, 0.0);
       const Index first = rows.inside ? rows.begin : std::max(rows.begin, panel.full_end);
-      kernels().weighted_abs_sums(front_.matrix.column(first, at), leading(panel), rows.end - first, accepted, weight,
-                                  front_.row_error + first, sums + kOperand);
+      kernels().weighted_abs_sums(front_.matrix.column(first, at), leading(panel), rows.end - first, accepted,
+                                  weight, front_.row_error + first, sums + kOperand);
       // Rows of the panel are needed in the front while its pivots are taken; others only when they are kept.
       double* plain = rows.inside ? front_.matrix.column(rows.begin, at) : nullptr;
-      kernels().divide_strips(scaled(panel, rows), scaled_stride(rows), rows.end - rows.begin, accepted, pivots_at(at),
-                              front_.fault.sign + rows.begin, lower(panel, rows), lower_stride(rows), plain,
-                              leading(panel), sums + kSizes, sums + kSigned);
+      kernels().divide_strips(scaled(panel, rows), scaled_stride(rows), rows.end - rows.begin, accepted,
+                              pivots_at(at), front_.fault.sign + rows.begin, lower(panel, rows),
+                              lower_stride(rows), plain, leading(panel), sums + kSizes, sums + kSigned);
       if (options_.keep_factor && !rows.inside) unpack_lower(panel, first, rows, accepted);
     });
     for (Offset piece = 0; piece < count; ++piece) {
@@ -244,7 +247,8 @@ class FrontEliminator {
     }
   }
 
-  /// weight[k] = 2 gamma sum_j (|X|^T |L11|^T)_kj: what multiplying by the inverted tile X may add to a row of A21.
+  /// weight[k] = 2 gamma sum_j (|X|^T |L11|^T)_kj: what multiplying by the inverted tile X may add to a row
+  /// of A21.
   void inverse_weights(Index accepted, double* column_sum_l, double* weight) {
     const double gamma = 2 * (accepted + 2) * kUnit;
     for (Index k = 0; k < accepted; ++k) {
@@ -254,7 +258,8 @@ class FrontEliminator {
     }
     for (Index k = 0; k < accepted; ++k) {
       double sum = 0;
-      for (Index i = k; i < accepted; ++i) sum += std::fabs(inverse()[i + Offset{k} * kTileWidth]) * column_sum_l[i];
+      for (Index i = k; i < accepted; ++i)
+        sum += std::fabs(inverse()[i + Offset{k} * kTileWidth]) * column_sum_l[i];
       weight[k] = gamma * sum;
     }
   }
@@ -265,7 +270,8 @@ class FrontEliminator {
     double through[kTileWidth];
     for (Index i = 0; i < accepted; ++i) {
       through[i] = 0;
-      for (Index k = 0; k <= i; ++k) through[i] += operand_sums[k] * std::fabs(inverse()[i + Offset{k} * kTileWidth]);
+      for (Index k = 0; k <= i; ++k)
+        through[i] += operand_sums[k] * std::fabs(inverse()[i + Offset{k} * kTileWidth]);
     }
     for (Index j = 0; j < accepted; ++j) {
       double sum = through[j];
@@ -318,8 +324,8 @@ class FrontEliminator {
         image[i] += column[i] * step[k];
       }
     }
-    result_.sign_sum_depth = std::max(result_.sign_sum_depth, width + static_cast<Index>(pieces(panel)) + 1 +
-                                                                  signed_sum_depth(kPieceRows));
+    result_.sign_sum_depth = std::max(
+        result_.sign_sum_depth, width + static_cast<Index>(pieces(panel)) + 1 + signed_sum_depth(kPieceRows));
     // A row of the tile that stays gets its products one by one.
     result_.image_additions += accepted < width ? accepted : image_additions(accepted);
     for (Index k = 0; k < accepted; ++k) {
@@ -328,8 +334,8 @@ class FrontEliminator {
     }
   }
 
-  /// The rest of the panel as operands from `rest` on, when columns of the tile itself stay behind: their W is in the
-  /// upper part of the tile.
+  /// The rest of the panel as operands from `rest` on, when columns of the tile itself stay behind: their W
+  /// is in the upper part of the tile.
   void repack_inside(const Panel& panel, Index width, Index accepted) {
     const Index at = panel.next, rest = at + accepted, below = at + width, rows = panel.full_end - rest;
     std::vector<double> w(static_cast<std::size_t>(rows) * static_cast<std::size_t>(accepted));
@@ -339,7 +345,8 @@ class FrontEliminator {
       for (Index i = accepted; i < width; ++i) target[i - accepted] = tile()[k + Offset{i} * kTileWidth];
       for (Index i = below; i < panel.full_end; ++i) {
         const Index r = i - below;
-        target[i - rest] = inside_.right(0, 0)[Offset{r / strip} * inside_.right_stride() + Offset{k} * strip + r % strip];
+        target[i - rest] =
+            inside_.right(0, 0)[Offset{r / strip} * inside_.right_stride() + Offset{k} * strip + r % strip];
       }
     }
     inside_.reset(0, rows, kTileWidth);
@@ -353,20 +360,22 @@ class FrontEliminator {
     const Index at = panel.next, below = at + width, rest = at + accepted;
     const PieceRows first = rows_of(panel, below, 0);
     if (first.end > first.begin) {
-      kernels().strips_growth_and_image(lower(panel, first), lower_stride(first), first.end - first.begin, accepted,
-                                        weight_, step_, front_.growth + below, front_.fault.image + below);
+      kernels().strips_growth_and_image(lower(panel, first), lower_stride(first), first.end - first.begin,
+                                        accepted, weight_, step_, front_.growth + below,
+                                        front_.fault.image + below);
     }
     if (accepted < width) repack_inside(panel, width, accepted);
     const Index columns = panel.full_end - rest;
     const auto update = [&](const PieceRows& rows, Index begin, Index end) {
       if (begin >= end || columns == 0) return;
-      kernels().subtract_product(lower(panel, {begin, end, rows.inside}), lower_stride(rows), inside_.right(0, 0),
-                                 inside_.right_stride(), accepted, end - begin, columns, begin - rest, 0,
-                                 front_.matrix.column(begin, rest), leading(panel));
+      kernels().subtract_product(lower(panel, {begin, end, rows.inside}), lower_stride(rows),
+                                 inside_.right(0, 0), inside_.right_stride(), accepted, end - begin, columns,
+                                 begin - rest, 0, front_.matrix.column(begin, rest), leading(panel));
     };
     // The first strip beyond may hold rows of the panel: it goes with them, for it writes to them too.
     const Index strip = strip_begin(panel.full_end);
-    const Index shared_end = strip < panel.full_end ? std::min(strip + kernels().row_strip, layout_.order) : strip;
+    const Index shared_end =
+        strip < panel.full_end ? std::min(strip + kernels().row_strip, layout_.order) : strip;
     for_each_piece(team_, pieces(panel), [&](Offset piece) {
       const PieceRows rows = rows_of(panel, below, piece);
       if (rows.inside) {
@@ -375,8 +384,9 @@ class FrontEliminator {
         return;
       }
       update(rows, std::max(rows.begin, shared_end), rows.end);
-      kernels().strips_growth_and_image(lower(panel, rows), lower_stride(rows), rows.end - rows.begin, accepted, weight_,
-                                        step_, front_.growth + rows.begin, front_.fault.image + rows.begin);
+      kernels().strips_growth_and_image(lower(panel, rows), lower_stride(rows), rows.end - rows.begin,
+                                        accepted, weight_, step_, front_.growth + rows.begin,
+                                        front_.fault.image + rows.begin);
     });
   }
 
@@ -408,7 +418,8 @@ class FrontEliminator {
     }
     store_tile(at, width, accepted);
     add_growth_and_image(panel, width, accepted);
-    for (Index k = 0; k < accepted; ++k) result_.two_by_two += front_.pivots.kind[at + k] == PivotKind::kTwoFirst;
+    for (Index k = 0; k < accepted; ++k)
+      result_.two_by_two += front_.pivots.kind[at + k] == PivotKind::kTwoFirst;
     result_.longest_sum = std::max(result_.longest_sum, accepted);
     if (at + accepted < layout_.order) update_panel(panel, width, accepted);
     return accepted;
@@ -422,7 +433,8 @@ class FrontEliminator {
     update_trailing(front_.matrix, beyond_, count, panel.full_end, team_);
   }
 
-  /// Columns [done, panel_end) failed: put untried candidates from the end in their places. Returns the new limit.
+  /// Columns [done, panel_end) failed: put untried candidates from the end in their places. Returns the new
+  /// limit.
   Index set_aside_failed(Index done, Index panel_end, Index limit) {
     const Index failed = panel_end - done;
     const Index replaced = std::min(failed, limit - panel_end);
@@ -440,8 +452,8 @@ class FrontEliminator {
   ThreadPool* team_;
   EliminationResult result_;
   double weight_[kTileWidth], step_[kTileWidth];  ///< |D| |L|^T e and D L^T x of the current tile
-  Index additions_beyond_ = 0;  ///< to entries beyond the panels, over all panels
-  Index most_in_panel_ = 0;     ///< to entries of one panel, by its own tiles
+  Index additions_beyond_ = 0;                    ///< to entries beyond the panels, over all panels
+  Index most_in_panel_ = 0;                       ///< to entries of one panel, by its own tiles
 };
 
 }  // namespace
@@ -458,11 +470,12 @@ void swap_symmetric(const Front& front, Index i, Index j, Index first_kept_colum
   std::swap(front.row_error[i], front.row_error[j]);
   std::swap(front.growth[i], front.growth[j]);
   if (front.fault.sign == nullptr) return;
-  for (double* values : {front.fault.sign, front.fault.image, front.fault.error}) std::swap(values[i], values[j]);
+  for (double* values : {front.fault.sign, front.fault.image, front.fault.error})
+    std::swap(values[i], values[j]);
 }
 
-EliminationResult eliminate_front(const Front& front, const EliminationOptions& options, EliminationScratch& scratch,
-                                  ThreadPool* team) {
+EliminationResult eliminate_front(const Front& front, const EliminationOptions& options,
+                                  EliminationScratch& scratch, ThreadPool* team) {
   return FrontEliminator(front, options, scratch, team).run();
 }
 

@@ -15,8 +15,9 @@ struct EliminationOptions {
   bool keep_factor = false;  ///< the rows of L already computed follow later interchanges
 };
 
-/// The vector that detects faults: every pivot column l_k with its D adds its share of L D L^T x to the image of x.
-/// A machine that computes right leaves image = A x within the bounds (src/inertia/error_bound.md, section 9).
+/// The vector that detects faults: every pivot column l_k with its D adds its share of L D L^T x to the image
+/// of x. A machine that computes right leaves image = A x within the bounds (src/inertia/error_bound.md,
+/// section 9).
 struct FaultVector {
   double* sign = nullptr;   ///< x, one entry +1 or -1 a row; null: no detection
   double* image = nullptr;  ///< one per row; shares of L D L^T x are added
@@ -25,31 +26,32 @@ struct FaultVector {
 
 /// A front: rows [0, candidates) may be eliminated, the rest only updated. Nothing is owned.
 struct Front {
-  BlockLower matrix;      ///< in: assembled lower triangle; out: L below eliminated pivots, Schur complement after
+  BlockLower
+      matrix;  ///< in: assembled lower triangle; out: L below eliminated pivots, Schur complement after
   Index candidates = 0;
-  PivotArrays pivots{};   ///< room for `candidates`
-  Index* label = nullptr;      ///< one per row, permuted along (callers put equation positions here)
-  double* row_error = nullptr; ///< one per row, permuted along; bounds are added here. Never null.
-  double* growth = nullptr;    ///< one per row, zero on entry: gets row sums of |L||D||L^T|. Never null.
-  FaultVector fault{};         ///< permuted along
+  PivotArrays pivots{};         ///< room for `candidates`
+  Index* label = nullptr;       ///< one per row, permuted along (callers put equation positions here)
+  double* row_error = nullptr;  ///< one per row, permuted along; bounds are added here. Never null.
+  double* growth = nullptr;     ///< one per row, zero on entry: gets row sums of |L||D||L^T|. Never null.
+  FaultVector fault{};          ///< permuted along
 };
 
 struct EliminationResult {
-  Index eliminated = 0;         ///< leading rows that became pivots; the others wait for the parent
-  bool stopped = false;         ///< definite only: a pivot was not positive
-  bool not_finite = false;      ///< overflow: the front holds Inf or NaN, nothing may be concluded
+  Index eliminated = 0;     ///< leading rows that became pivots; the others wait for the parent
+  bool stopped = false;     ///< definite only: a pivot was not positive
+  bool not_finite = false;  ///< overflow: the front holds Inf or NaN, nothing may be concluded
   Offset two_by_two = 0;
-  Index longest_sum = 0;        ///< most products added up in one call
-  Index additions = 0;          ///< most such sums added to one entry
-  Index sign_sum_depth = 0;     ///< longest path of additions to an entry of L^T x
-  Index image_additions = 0;    ///< most additions to an entry of the image
+  Index longest_sum = 0;      ///< most products added up in one call
+  Index additions = 0;        ///< most such sums added to one entry
+  Index sign_sum_depth = 0;   ///< longest path of additions to an entry of L^T x
+  Index image_additions = 0;  ///< most additions to an entry of the image
 };
 
 /// Scratch of one worker, grown on demand and reused from front to front.
 struct EliminationScratch {
-  EliminatedColumns beyond;             ///< rows beyond the current column block
-  EliminatedColumns inside;             ///< rows of the current column block below the current tile
-  Buffer<double> scaled;                ///< W = L D of pivots found by search
+  EliminatedColumns beyond;  ///< rows beyond the current column block
+  EliminatedColumns inside;  ///< rows of the current column block below the current tile
+  Buffer<double> scaled;     ///< W = L D of pivots found by search
   std::vector<double> tile, inverse, factor, column_parts, sums;
   std::vector<double> no_fault_vector;  ///< zeros for a front without one
   std::vector<Index> permutation;
@@ -58,19 +60,19 @@ struct EliminationScratch {
 };
 
 /// Pivots are taken tile by tile inside a column block: first in the order given, then with complete pivoting
-/// inside the tile; columns whose multipliers exceed the limit are put back and retried later, at last one by one
-/// with a full search (Duff, Hogg, Lopez, SIAM J. Sci. Comput. 42 (2020) C23). Nothing is perturbed.
-/// When no row lies below the candidates, all of them are eliminated. Zero pivots are exact zero columns.
-/// `team` null: this thread alone; the result has the same bits either way. Cost: order^2 x candidates flops.
-EliminationResult eliminate_front(const Front& front, const EliminationOptions& options, EliminationScratch& scratch,
-                                  ThreadPool* team);
+/// inside the tile; columns whose multipliers exceed the limit are put back and retried later, at last one by
+/// one with a full search (Duff, Hogg, Lopez, SIAM J. Sci. Comput. 42 (2020) C23). Nothing is perturbed. When
+/// no row lies below the candidates, all of them are eliminated. Zero pivots are exact zero columns. `team`
+/// null: this thread alone; the result has the same bits either way. Cost: order^2 x candidates flops.
+EliminationResult eliminate_front(const Front& front, const EliminationOptions& options,
+                                  EliminationScratch& scratch, ThreadPool* team);
 
 /// Interchanges rows and columns i < j of the front, with their labels and bounds. Columns before
 /// `first_kept_column` are not touched.
 void swap_symmetric(const Front& front, Index i, Index j, Index first_kept_column);
 
-/// The last resort for candidates [from, candidates): threshold partial pivoting with a search of whole columns.
-/// Returns the first row that was not eliminated. Cost: (candidates - from)^2 x order.
+/// The last resort for candidates [from, candidates): threshold partial pivoting with a search of whole
+/// columns. Returns the first row that was not eliminated. Cost: (candidates - from)^2 x order.
 Index eliminate_by_search(const Front& front, Index from, const EliminationOptions& options,
                           EliminationScratch& scratch, ThreadPool* team, EliminationResult& result);
 

@@ -8,18 +8,24 @@ namespace stanchion {
 namespace {
 
 struct ColumnMaxima {
-  double largest = 0;         ///< over all rows but the diagonal (and `skip`)
-  double candidate = 0;       ///< over candidate rows only
+  double largest = 0;    ///< over all rows but the diagonal (and `skip`)
+  double candidate = 0;  ///< over candidate rows only
   Index candidate_row = -1;
   bool finite = true;
 };
 
 class SearchEliminator {
  public:
-  SearchEliminator(const Front& front, Index from, const EliminationOptions& options, EliminationScratch& scratch,
-                   ThreadPool* team, EliminationResult& result)
-      : front_(front), m_(front.matrix), options_(options), scratch_(scratch), team_(team), result_(result),
-        next_(from), batch_begin_(from) {}
+  SearchEliminator(const Front& front, Index from, const EliminationOptions& options,
+                   EliminationScratch& scratch, ThreadPool* team, EliminationResult& result)
+      : front_(front),
+        m_(front.matrix),
+        options_(options),
+        scratch_(scratch),
+        team_(team),
+        result_(result),
+        next_(from),
+        batch_begin_(from) {}
 
   Index run() {
     for (bool progress = true; progress && next_ < front_.candidates;) {
@@ -80,11 +86,12 @@ class SearchEliminator {
     const Index partner = own.candidate_row;
     if (partner < 0) return 0;
     const double a = diagonal, b = entry(partner, j), c = m_.at(partner, partner);
-    if (std::fabs(b) < kLeastPivot || std::max(std::fabs(a), std::fabs(c)) > kTwoByTwoShare * std::fabs(b)) return 0;
+    if (std::fabs(b) < kLeastPivot || std::max(std::fabs(a), std::fabs(c)) > kTwoByTwoShare * std::fabs(b))
+      return 0;
     const double first = maxima(j, partner).largest, second = maxima(partner, j).largest;
     const double determinant = std::fabs(b) * std::fabs(b * (1 - (a / b) * (c / b)));
-    const double growth = std::max(std::fabs(c) * first + std::fabs(b) * second,
-                                   std::fabs(b) * first + std::fabs(a) * second);
+    const double growth =
+        std::max(std::fabs(c) * first + std::fabs(b) * second, std::fabs(b) * first + std::fabs(a) * second);
     if (!(growth <= limit * determinant)) return 0;
     take_two(j, partner);
     return 2;
@@ -93,7 +100,8 @@ class SearchEliminator {
   void move_to_front(Index j, Index place) {
     if (j == place) return;
     swap_symmetric(front_, place, j, options_.keep_factor ? 0 : batch_begin_);
-    for (Index pivot = batch_begin_; pivot < next_; ++pivot) std::swap(scaled(place, pivot), scaled(j, pivot));
+    for (Index pivot = batch_begin_; pivot < next_; ++pivot)
+      std::swap(scaled(place, pivot), scaled(j, pivot));
   }
 
   void take_zero(Index j) {
@@ -212,8 +220,8 @@ class SearchEliminator {
       for (Index begin = batch_begin_; begin < next_;) {
         const Index block = m_.layout.block_of(begin);
         const Index end = std::min(next_, m_.layout.block_end(block));
-        pack_columns(m_.column(rest, begin), m_.layout.leading_dimension(block), &scaled(rest, begin), leading_scaled(),
-                     rest, order(), end - begin, scratch_.beyond);
+        pack_columns(m_.column(rest, begin), m_.layout.leading_dimension(block), &scaled(rest, begin),
+                     leading_scaled(), rest, order(), end - begin, scratch_.beyond);
         update_trailing(m_, scratch_.beyond, end - begin, rest, team_);
         result_.longest_sum = std::max(result_.longest_sum, end - begin);
         ++searches_;

@@ -15,7 +15,9 @@ extern const Kernels table;
 
 namespace {
 
-bool has_avx2() { return __builtin_cpu_supports("avx2") && __builtin_cpu_supports("fma"); }
+bool has_avx2() {
+  return __builtin_cpu_supports("avx2") && __builtin_cpu_supports("fma");
+}
 
 bool has_avx512() {
   return has_avx2() && __builtin_cpu_supports("avx512f") && __builtin_cpu_supports("avx512dq") &&
@@ -35,11 +37,17 @@ std::atomic<const Kernels*>& chosen() {
 
 }  // namespace
 
-const Kernels& kernels() { return *chosen().load(std::memory_order_relaxed); }
+const Kernels& kernels() {
+  return *chosen().load(std::memory_order_relaxed);
+}
 
-void use_kernels(const Kernels& set) { chosen().store(&set, std::memory_order_relaxed); }
+void use_kernels(const Kernels& set) {
+  chosen().store(&set, std::memory_order_relaxed);
+}
 
-const Kernels& reference_kernels() { return isa_generic::table; }
+const Kernels& reference_kernels() {
+  return isa_generic::table;
+}
 
 int kernel_sets(const Kernels* sets[3]) {
   int count = 0;

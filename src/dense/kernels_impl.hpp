@@ -7,10 +7,15 @@
 namespace stanchion {
 namespace {
 
-inline double magnitude(double x) { return __builtin_fabs(x); }
-inline bool finite(double x) { return __builtin_isfinite(x); }
+inline double magnitude(double x) {
+  return __builtin_fabs(x);
+}
+inline bool finite(double x) {
+  return __builtin_isfinite(x);
+}
 
-// As many lanes as a register holds: sums keep one order in each set, and the compiler may not reorder them itself.
+// As many lanes as a register holds: sums keep one order in each set, and the compiler may not reorder them
+// itself.
 #if defined(__AVX512F__)
 #define STANCHION_LANE_BYTES 64
 #elif defined(__AVX2__)
@@ -27,7 +32,9 @@ inline Lanes load(const double* p) {
   __builtin_memcpy(&v, p, sizeof(v));
   return v;
 }
-inline void store(double* p, Lanes v) { __builtin_memcpy(p, &v, sizeof(v)); }
+inline void store(double* p, Lanes v) {
+  __builtin_memcpy(p, &v, sizeof(v));
+}
 inline Lanes magnitude(Lanes v) {
   const LaneBits mask = LaneBits{} + 0x7fffffffffffffffLL;
   return (Lanes)((LaneBits)v & mask);
@@ -65,7 +72,8 @@ inline double abs_sum_of(const double* x, Index count) {
   return result;
 }
 
-Index factor_tile(double* tile, Index leading, Index width, bool definite, double growth_limit, PivotArrays pivots) {
+Index factor_tile(double* tile, Index leading, Index width, bool definite, double growth_limit,
+                  PivotArrays pivots) {
   for (Index k = 0; k < width; ++k) {
     double* column = tile + static_cast<long>(k) * leading;
     const double pivot = column[k];
@@ -198,7 +206,8 @@ void eliminate_two(double* full, Index leading, Index width, Index k, PivotArray
 Index factor_tile_pivoted(double* tile, Index leading, Index width, PivotArrays pivots, Index* permutation) {
   for (Index j = 0; j < width; ++j) {
     permutation[j] = j;
-    for (Index i = j + 1; i < width; ++i) tile[j + static_cast<long>(i) * leading] = tile[i + static_cast<long>(j) * leading];
+    for (Index i = j + 1; i < width; ++i)
+      tile[j + static_cast<long>(i) * leading] = tile[i + static_cast<long>(j) * leading];
   }
   Index k = 0;
   while (k < width) {
@@ -219,7 +228,8 @@ Index factor_tile_pivoted(double* tile, Index leading, Index width, PivotArrays 
   return k;
 }
 
-void invert_unit_lower(const double* lower, Index leading, Index width, double* inverse, Index leading_inverse) {
+void invert_unit_lower(const double* lower, Index leading, Index width, double* inverse,
+                       Index leading_inverse) {
   // Columns of the inverse in groups of eight, so that L is read an eighth as often.
   constexpr Index kGroup = 8;
   for (Index begin = 0; begin < width; begin += kGroup) {
@@ -303,20 +313,9 @@ double copy_with_abs_sums(const double* source, Index count, double* destination
 namespace stanchion {
 namespace STANCHION_KERNEL_ISA {
 extern const Kernels table;
-const Kernels table{STANCHION_KERNEL_NAME,
-                    kRowStrip,
-                    kColumnStrip,
-                    factor_tile,
-                    factor_tile_pivoted,
-                    invert_unit_lower,
-                    weighted_abs_sums,
-                    copy_with_abs_sums,
-                    pack_left,
-                    pack_right,
-                    multiply_by_upper,
-                    subtract_product,
-                    strips_abs_max,
-                    divide_strips,
-                    strips_growth_and_image};
+const Kernels table{
+    STANCHION_KERNEL_NAME, kRowStrip,         kColumnStrip,       factor_tile,   factor_tile_pivoted,
+    invert_unit_lower,     weighted_abs_sums, copy_with_abs_sums, pack_left,     pack_right,
+    multiply_by_upper,     subtract_product,  strips_abs_max,     divide_strips, strips_growth_and_image};
 }  // namespace STANCHION_KERNEL_ISA
 }  // namespace stanchion

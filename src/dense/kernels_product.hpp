@@ -1,7 +1,8 @@
 // Matrix products on packed operands, included by kernels_impl.hpp once per instruction set.
 //
-// A packed operand is cut into strips of kRowStrip (left) or kColumnStrip (right) rows; a strip holds, for one product
-// after the other, its entries side by side, zeros where rows end. So the loops below read memory straight on.
+// A packed operand is cut into strips of kRowStrip (left) or kColumnStrip (right) rows; a strip holds, for
+// one product after the other, its entries side by side, zeros where rows end. So the loops below read memory
+// straight on.
 
 namespace stanchion {
 namespace {
@@ -15,8 +16,8 @@ constexpr Index kRowVectors = 3;
 constexpr Index kRowStrip = kRowVectors * kLanes;
 constexpr Index kColumnStrip = kLanes;  // one register of a product is one column of a right strip
 
-/// Sums over `depth` products of V registers of rows with a strip of columns. Row entries of product p start at
-/// a + p leading.
+/// Sums over `depth` products of V registers of rows with a strip of columns. Row entries of product p start
+/// at a + p leading.
 template <Index V>
 struct Sums {
   Lanes value[kColumnStrip][V];
@@ -56,7 +57,8 @@ __attribute__((always_inline)) inline void subtract(const Sums<V>& sums, double*
 
 /// C -= sums for the rows and columns named.
 template <Index V>
-void subtract_part(const Sums<V>& sums, Index rows, Index first_column, Index columns, double* c, long leading) {
+void subtract_part(const Sums<V>& sums, Index rows, Index first_column, Index columns, double* c,
+                   long leading) {
   double whole[kColumnStrip][V * kLanes];
 #pragma GCC unroll 8
   for (Index j = 0; j < kColumnStrip; ++j) {
@@ -69,8 +71,8 @@ void subtract_part(const Sums<V>& sums, Index rows, Index first_column, Index co
 }
 
 template <Index V>
-void subtract_strip(const double* a, const double* b, Index depth, Index rows, Index first_column, Index columns,
-                    double* c, long leading) {
+void subtract_strip(const double* a, const double* b, Index depth, Index rows, Index first_column,
+                    Index columns, double* c, long leading) {
   // C is on its way while the sums are formed.
   for (Index j = 0; j < columns; ++j) {
     for (Index v = 0; v < V * kLanes; v += 8) __builtin_prefetch(c + v + j * leading, 1);
@@ -84,8 +86,9 @@ void subtract_strip(const double* a, const double* b, Index depth, Index rows, I
   }
 }
 
-void subtract_product(const double* left, Index left_stride, const double* right, Index right_stride, Index depth,
-                      Index rows, Index columns, Index first_row, Index first_column, double* c, Index leading) {
+void subtract_product(const double* left, Index left_stride, const double* right, Index right_stride,
+                      Index depth, Index rows, Index columns, Index first_row, Index first_column, double* c,
+                      Index leading) {
   if (rows <= 0) return;  // an operand without rows may be null
   for (Index j = first_column / kColumnStrip * kColumnStrip; j < columns; j += kColumnStrip) {
     const double* b = right + static_cast<long>(j / kColumnStrip) * right_stride;
@@ -97,17 +100,25 @@ void subtract_product(const double* left, Index left_stride, const double* right
       double* target = c + i + static_cast<long>(j) * leading;
       const Index height = rows - i < kRowStrip ? rows - i : kRowStrip;
       switch ((height + kLanes - 1) / kLanes) {
-        case 1: subtract_strip<1>(a, b, depth, height, first_column - j, width, target, leading); break;
-        case 2: subtract_strip<2>(a, b, depth, height, first_column - j, width, target, leading); break;
-        case 3: subtract_strip<3>(a, b, depth, height, first_column - j, width, target, leading); break;
-        default: subtract_strip<kRowVectors>(a, b, depth, height, first_column - j, width, target, leading);
+        case 1:
+          subtract_strip<1>(a, b, depth, height, first_column - j, width, target, leading);
+          break;
+        case 2:
+          subtract_strip<2>(a, b, depth, height, first_column - j, width, target, leading);
+          break;
+        case 3:
+          subtract_strip<3>(a, b, depth, height, first_column - j, width, target, leading);
+          break;
+        default:
+          subtract_strip<kRowVectors>(a, b, depth, height, first_column - j, width, target, leading);
       }
     }
   }
 }
 
 template <Index V>
-void multiply_strip(const double* a, long leading_a, const double* b, Index depth, double* out, long out_stride) {
+void multiply_strip(const double* a, long leading_a, const double* b, Index depth, double* out,
+                    long out_stride) {
   Sums<V> sums;
   sums.form(a, leading_a, b, depth);
 #pragma GCC unroll 4
@@ -120,12 +131,13 @@ void multiply_strip(const double* a, long leading_a, const double* b, Index dept
 /// The rows of a last, partial register with zeros after them.
 void pad_rows(const double* a, Index leading, Index rows, Index depth, double* padded) {
   for (Index p = 0; p < depth; ++p) {
-    for (Index i = 0; i < kLanes; ++i) padded[i + p * kLanes] = i < rows ? a[i + static_cast<long>(p) * leading] : 0;
+    for (Index i = 0; i < kLanes; ++i)
+      padded[i + p * kLanes] = i < rows ? a[i + static_cast<long>(p) * leading] : 0;
   }
 }
 
-void multiply_by_upper(const double* a, Index leading, Index rows, const double* factor, Index width, double* out,
-                       Index out_stride) {
+void multiply_by_upper(const double* a, Index leading, Index rows, const double* factor, Index width,
+                       double* out, Index out_stride) {
   if (rows <= 0) return;
   for (Index j = 0; j < width; j += kColumnStrip) {
     // Column j of the factor has its last entry on the diagonal.
@@ -134,16 +146,18 @@ void multiply_by_upper(const double* a, Index leading, Index rows, const double*
     double* target = out + static_cast<long>(j) * kColumnStrip;
     Index i = 0;
     for (; i + kRowStrip <= rows; i += kRowStrip) {
-      multiply_strip<kRowVectors>(a + i, leading, b, depth, target + static_cast<long>(i / kLanes) * out_stride,
-                                  out_stride);
+      multiply_strip<kRowVectors>(a + i, leading, b, depth,
+                                  target + static_cast<long>(i / kLanes) * out_stride, out_stride);
     }
     for (; i + kLanes <= rows; i += kLanes) {
-      multiply_strip<1>(a + i, leading, b, depth, target + static_cast<long>(i / kLanes) * out_stride, out_stride);
+      multiply_strip<1>(a + i, leading, b, depth, target + static_cast<long>(i / kLanes) * out_stride,
+                        out_stride);
     }
     if (i < rows) {
       double padded[kTileWidth * kLanes];
       pad_rows(a + i, leading, rows - i, depth, padded);
-      multiply_strip<1>(padded, kLanes, b, depth, target + static_cast<long>(i / kLanes) * out_stride, out_stride);
+      multiply_strip<1>(padded, kLanes, b, depth, target + static_cast<long>(i / kLanes) * out_stride,
+                        out_stride);
     }
   }
 }
@@ -177,7 +191,8 @@ void columns_abs_max(const double* w, Index stride, Index strips, double* out) {
   }
   for (Index k = 0; k < Columns; ++k) {
     double result = 0;
-    for (Index lane = 0; lane < kLanes; ++lane) result = largest[k][lane] > result ? largest[k][lane] : result;
+    for (Index lane = 0; lane < kLanes; ++lane)
+      result = largest[k][lane] > result ? largest[k][lane] : result;
     out[k] = sum_of(probe[k]) == 0 ? result : __builtin_inf();
   }
 }
@@ -226,9 +241,9 @@ struct ColumnOut {
   }
 };
 
-void divide_strips(const double* w, Index stride, Index rows, Index columns, PivotArrays pivots, const double* sign,
-                   double* left, Index left_stride, double* plain, Index leading, double* abs_sum,
-                   double* signed_sum) {
+void divide_strips(const double* w, Index stride, Index rows, Index columns, PivotArrays pivots,
+                   const double* sign, double* left, Index left_stride, double* plain, Index leading,
+                   double* abs_sum, double* signed_sum) {
   if (rows <= 0) return;
   const Index strips = (rows + kLanes - 1) / kLanes;
   const auto column = [&](Index k) {
@@ -243,7 +258,8 @@ void divide_strips(const double* w, Index stride, Index rows, Index columns, Piv
       const double* g = f + kColumnStrip;
       ColumnOut y = column(k + 1);
       for (Index s = 0; s < strips; ++s) {
-        const Lanes first = load(f + static_cast<long>(s) * stride), second = load(g + static_cast<long>(s) * stride);
+        const Lanes first = load(f + static_cast<long>(s) * stride),
+                    second = load(g + static_cast<long>(s) * stride);
         x.put(s, (solve.c_over_b * first - second) * solve.inverse);
         y.put(s, (solve.a_over_b * second - first) * solve.inverse);
       }
@@ -259,8 +275,8 @@ void divide_strips(const double* w, Index stride, Index rows, Index columns, Piv
 }
 
 /// Sums of four products at a time are added to what growth and image hold.
-void strips_growth_and_image(const double* left, Index stride, Index rows, Index columns, const double* weight,
-                             const double* step, double* growth, double* image) {
+void strips_growth_and_image(const double* left, Index stride, Index rows, Index columns,
+                             const double* weight, const double* step, double* growth, double* image) {
   for (Index begin = 0; begin < rows; begin += kLanes) {
     const Index strip = begin / kLanes, count = rows - begin < kLanes ? rows - begin : kLanes;
     const double* a = left + static_cast<long>(strip / kRowVectors) * stride + strip % kRowVectors * kLanes;
@@ -271,7 +287,8 @@ void strips_growth_and_image(const double* left, Index stride, Index rows, Index
     }
     Index k = 0;
     for (; k + 4 <= columns; k += 4) {
-      const Lanes v0 = load(a), v1 = load(a + kRowStrip), v2 = load(a + 2 * kRowStrip), v3 = load(a + 3 * kRowStrip);
+      const Lanes v0 = load(a), v1 = load(a + kRowStrip), v2 = load(a + 2 * kRowStrip),
+                  v3 = load(a + 3 * kRowStrip);
       const double *f = weight + k, *t = step + k;
       size += magnitude(v0) * f[0] + magnitude(v1) * f[1] + magnitude(v2) * f[2] + magnitude(v3) * f[3];
       share += v0 * t[0] + v1 * t[1] + v2 * t[2] + v3 * t[3];

@@ -32,7 +32,9 @@ struct Packed {
   std::vector<double> values;
 
   Packed(Index strip, Index rows, Index columns)
-      : stride(strip * columns), values(static_cast<std::size_t>((rows + strip - 1) / strip) * static_cast<std::size_t>(stride), 7.0) {}
+      : stride(strip * columns),
+        values(static_cast<std::size_t>((rows + strip - 1) / strip) * static_cast<std::size_t>(stride), 7.0) {
+  }
 };
 
 Packed as_left(const Kernels& set, const Block& block) {
@@ -64,8 +66,8 @@ bool sums_right(const Kernels& set, const Block& block) {
   const double *a = block.a.data(), *weight = block.weight.data();
   set.weighted_abs_sums(a, block.rows, block.rows, block.columns, weight, rows.data(), columns.data());
   const Packed left = as_left(set, block), right = as_right(set, block);
-  set.strips_growth_and_image(left.values.data(), left.stride, block.rows, block.columns, weight, weight, growth.data(),
-                              image.data());
+  set.strips_growth_and_image(left.values.data(), left.stride, block.rows, block.columns, weight, weight,
+                              growth.data(), image.data());
   set.strips_abs_max(right.values.data(), right.stride, block.rows, block.columns, largest.data());
   return rows == right_rows && growth == right_rows && image == right_image && columns == right_columns &&
          largest == right_largest;
@@ -87,8 +89,8 @@ bool quotients_right(const Kernels& set, const Block& block) {
   const Packed w = as_right(set, block);
   Packed left(set.row_strip, block.rows, block.columns);
   set.divide_strips(w.values.data(), w.stride, block.rows, block.columns,
-                    {diagonal.data(), off_diagonal.data(), kind.data()}, block.sign.data(), left.values.data(),
-                    left.stride, l.data(), block.rows, size.data(), total.data());
+                    {diagonal.data(), off_diagonal.data(), kind.data()}, block.sign.data(),
+                    left.values.data(), left.stride, l.data(), block.rows, size.data(), total.data());
   Block plain = block;
   plain.a = l;
   if (left.values != as_left(set, plain).values) return false;
@@ -111,10 +113,11 @@ bool quotients_right(const Kernels& set, const Block& block) {
 bool products_right(const Kernels& set, Numbers& numbers, const Block& block) {
   const Block other(numbers, 1 + block.rows % 37, block.columns);
   const Packed left = as_left(set, block), right = as_right(set, other);
-  const Index first_row = block.rows % 5, first_column = block.rows % 4 == 0 ? std::min(block.rows % 11, other.rows) : 0;
+  const Index first_row = block.rows % 5,
+              first_column = block.rows % 4 == 0 ? std::min(block.rows % 11, other.rows) : 0;
   std::vector<double> c(static_cast<std::size_t>(block.rows) * static_cast<std::size_t>(other.rows), 100.0);
-  set.subtract_product(left.values.data(), left.stride, right.values.data(), right.stride, block.columns, block.rows,
-                       other.rows, first_row, first_column, c.data(), block.rows);
+  set.subtract_product(left.values.data(), left.stride, right.values.data(), right.stride, block.columns,
+                       block.rows, other.rows, first_row, first_column, c.data(), block.rows);
   const auto dot = [&](Index i, Index j, Index depth) {
     double sum = 0;
     for (Index p = 0; p < depth; ++p) sum += block.at(i, p) * other.at(j, p);
@@ -129,19 +132,21 @@ bool products_right(const Kernels& set, Numbers& numbers, const Block& block) {
   const Block factor(numbers, block.columns, block.columns);
   std::vector<double> upper(std::size_t{kTileWidth} * kTileWidth), packed_factor(upper.size());
   for (Index j = 0; j < block.columns; ++j) {
-    for (Index p = 0; p <= j; ++p) upper[static_cast<std::size_t>(Offset{p} * kTileWidth + j)] = factor.at(j, p);
+    for (Index p = 0; p <= j; ++p)
+      upper[static_cast<std::size_t>(Offset{p} * kTileWidth + j)] = factor.at(j, p);
   }
   set.pack_right(upper.data(), kTileWidth, block.columns, block.columns, packed_factor.data(),
                  kTileWidth * set.column_strip);
   Packed w(set.column_strip, block.rows, kTileWidth);
-  set.multiply_by_upper(block.a.data(), block.rows, block.rows, packed_factor.data(), block.columns, w.values.data(),
-                        w.stride);
+  set.multiply_by_upper(block.a.data(), block.rows, block.rows, packed_factor.data(), block.columns,
+                        w.values.data(), w.stride);
   for (Index j = 0; j < block.columns; ++j) {
     for (Index i = 0; i < block.rows; ++i) {
       double right_sum = 0;
       for (Index p = 0; p <= j; ++p) right_sum += block.at(i, p) * factor.at(j, p);
       const Index strip = set.column_strip;
-      if (w.values[static_cast<std::size_t>(Offset{i / strip} * w.stride + Offset{j} * strip + i % strip)] != right_sum) {
+      if (w.values[static_cast<std::size_t>(Offset{i / strip} * w.stride + Offset{j} * strip + i % strip)] !=
+          right_sum) {
         return false;
       }
     }

@@ -10,8 +10,8 @@
 
 namespace stanchion {
 
-/// Runs `work(piece)` for every piece: shared with the threads of `team`, or here in order when it is null. The pieces, and
-/// so the arithmetic, are the same either way.
+/// Runs `work(piece)` for every piece: shared with the threads of `team`, or here in order when it is null.
+/// The pieces, and so the arithmetic, are the same either way.
 template <class Work>
 void for_each_piece(ThreadPool* team, Offset pieces, const Work& work) {
   if (team == nullptr || pieces <= 1) {
@@ -21,13 +21,13 @@ void for_each_piece(ThreadPool* team, Offset pieces, const Work& work) {
   }
 }
 
-/// Eliminated columns as operands of products: rows [first_row, order) of L as left and of W = L D as right operand,
-/// up to `capacity` columns. first_row is a multiple of kMostRowStrip, so that strips and column blocks of the front
-/// end together; rows before the first that matters are zero.
+/// Eliminated columns as operands of products: rows [first_row, order) of L as left and of W = L D as right
+/// operand, up to `capacity` columns. first_row is a multiple of kMostRowStrip, so that strips and column
+/// blocks of the front end together; rows before the first that matters are zero.
 class EliminatedColumns {
  public:
-  /// Room for rows [first_row, order); what was there is lost. Products write whole strips of columns, so up to
-  /// column_strip - 1 columns after the last one asked for are overwritten.
+  /// Room for rows [first_row, order); what was there is lost. Products write whole strips of columns, so up
+  /// to column_strip - 1 columns after the last one asked for are overwritten.
   void reset(Index first_row, Index order, Index capacity);
 
   Index first_row() const { return first_row_; }
@@ -50,22 +50,25 @@ class EliminatedColumns {
   Buffer<double> left_, right_;
 };
 
-/// Doubles that EliminatedColumns needs for a front of `order` rows and `candidates` columns, with any kernels.
+/// Doubles that EliminatedColumns needs for a front of `order` rows and `candidates` columns, with any
+/// kernels.
 constexpr Offset eliminated_doubles(Index order, Index candidates) {
   const Index columns = candidates < kFrontBlock ? candidates : kFrontBlock;
   return Offset{2} * (order + 2 * kMostRowStrip) * (columns + 8);
 }
 
 /// First row of the strips for rows from `row` on.
-constexpr Index strip_begin(Index row) { return row / kMostRowStrip * kMostRowStrip; }
+constexpr Index strip_begin(Index row) {
+  return row / kMostRowStrip * kMostRowStrip;
+}
 
 /// Packs rows [row, order) of `count` columns of L and of W, both column-major from `row` on.
-void pack_columns(const double* lower, Index leading_lower, const double* scaled, Index leading_scaled, Index row,
-                  Index order, Index count, EliminatedColumns& columns);
+void pack_columns(const double* lower, Index leading_lower, const double* scaled, Index leading_scaled,
+                  Index row, Index order, Index count, EliminatedColumns& columns);
 
 /// For every column j in [column_begin, order) and row i >= j: C_ij -= sum_k L_ik W_jk, k < count.
-/// column_begin must not be before columns.first_row(). Entries of the upper triangle inside a column block may be
-/// overwritten. Cost: count multiply-adds an entry.
+/// column_begin must not be before columns.first_row(). Entries of the upper triangle inside a column block
+/// may be overwritten. Cost: count multiply-adds an entry.
 void update_trailing(const BlockLower& front, EliminatedColumns& columns, Index count, Index column_begin,
                      ThreadPool* team);
 

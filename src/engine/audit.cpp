@@ -25,7 +25,8 @@ std::string number(double value) {
 
 class Audit {
  public:
-  Audit(PencilCounter& counter, const Request& request, const RunContext& context, ThreadPool& pool, Outcome& outcome)
+  Audit(PencilCounter& counter, const Request& request, const RunContext& context, ThreadPool& pool,
+        Outcome& outcome)
       : counter_(counter),
         request_(request),
         asked_(request.audit),
@@ -52,12 +53,14 @@ class Audit {
     return !request_.digits && !request_.resolution && request_.precision == Precision::kDouble;
   }
 
-  // ---- the list -----------------------------------------------------------------------------------------------------
+  // ---- the list
+  // -----------------------------------------------------------------------------------------------------
 
   ValueSpan span_of(const ListedValue& listed, std::size_t number_in_list) const {
-    const double width =
-        listed.tolerance ? *listed.tolerance : asked_.tolerance.value_or(kTolerance) * std::fabs(listed.value);
-    const double low = shift_of(listed.value - width, asked_.unit), high = shift_of(listed.value + width, asked_.unit);
+    const double width = listed.tolerance ? *listed.tolerance
+                                          : asked_.tolerance.value_or(kTolerance) * std::fabs(listed.value);
+    const double low = shift_of(listed.value - width, asked_.unit),
+                 high = shift_of(listed.value + width, asked_.unit);
     return {low, high, 1, {number_in_list}};
   }
 
@@ -86,7 +89,8 @@ class Audit {
     clusters_ = clusters_of(std::move(inside));
   }
 
-  /// Lists of one sign are judged from 0 or from everything, for what is missed below the first value matters most.
+  /// Lists of one sign are judged from 0 or from everything, for what is missed below the first value matters
+  /// most.
   void choose_range(double low, double high) {
     const bool factors = request_.pencil == Pencil::kGeometric;
     const auto beyond = [](double end, int direction) { return end + direction * kBeyond * std::fabs(end); };
@@ -100,7 +104,8 @@ class Audit {
     return list_[k].label.empty() ? number(list_[k].value) : list_[k].label;
   }
 
-  // ---- what is certain ------------------------------------------------------------------------------------------
+  // ---- what is certain
+  // ------------------------------------------------------------------------------------------
 
   Result<bool> by_residuals() {
     ResidualQuestion question;
@@ -116,14 +121,16 @@ class Audit {
     if (!answer->found || !answer->found->complete) return false;
     const FoundRange& found = *answer->found;
     std::vector<ValueSpan> certain;
-    for (const FoundValues& values : found.values) certain.push_back({values.low, values.high, values.count, {}});
+    for (const FoundValues& values : found.values)
+      certain.push_back({values.low, values.high, values.count, {}});
     answer_.range = *found.complete;
     answer_.proof = "residual intervals of all values, and counts at the ends of the range";
     report(compare_spans(clusters_, certain, from_, to_), &found);
     return true;
   }
 
-  /// Every gap of the list is counted in: two counts at the ends would let a missing and a surplus value cancel out.
+  /// Every gap of the list is counted in: two counts at the ends would let a missing and a surplus value
+  /// cancel out.
   Status by_counts() {
     if (counter_.kind() == CountKind::kDirections) {
       if (Status status = counter_.judge(); !status.ok()) return status;
@@ -154,14 +161,21 @@ class Audit {
       if (fact && fact->exact()) facts.push_back(*fact);
     }
     if (facts.size() < 2 || facts.front().shift != from_ || facts.back().shift != to_) {
-      counter_.warn("end-of-range", "an end of the range lies on a value, or cannot be counted at. Remedy: give --from and --to a "
-                                    "little elsewhere");
+      counter_.warn(
+          "end-of-range",
+          "an end of the range lies on a value, or cannot be counted at. Remedy: give --from and --to a "
+          "little elsewhere");
       give_up();
       return;
     }
     std::vector<Stretch> stretches;
     for (std::size_t k = 1; k < facts.size(); ++k) {
-      Stretch stretch{facts[k - 1].shift, facts[k].shift, 0, static_cast<Index>(facts[k].least - facts[k - 1].least), {}, {}};
+      Stretch stretch{facts[k - 1].shift,
+                      facts[k].shift,
+                      0,
+                      static_cast<Index>(facts[k].least - facts[k - 1].least),
+                      {},
+                      {}};
       for (const ValueSpan& cluster : clusters_) {
         if (cluster.low < stretch.low || cluster.high > stretch.high) continue;
         stretch.listed += cluster.count;
@@ -169,12 +183,14 @@ class Audit {
       }
       stretches.push_back(std::move(stretch));
     }
-    answer_.range = counted_range(std::isfinite(from_) ? std::optional(facts.front()) : std::nullopt, facts.back(), from_, to_);
+    answer_.range = counted_range(std::isfinite(from_) ? std::optional(facts.front()) : std::nullopt,
+                                  facts.back(), from_, to_);
     if (answer_.range.level == Level::kStatistical) answer_.range.failure_probability = outcome_.risk;
     report(stretches, nullptr);
   }
 
-  // ---- verdict ------------------------------------------------------------------------------------------------------
+  // ---- verdict
+  // ------------------------------------------------------------------------------------------------------
 
   void give_up() {
     unresolved_ = true;
@@ -191,7 +207,8 @@ class Audit {
       for (const std::size_t k : stretch.members) gap.labels.push_back(label_of(k));
       answer_.gaps.push_back(std::move(gap));
       if (found == nullptr || !asked_.find_missing || stretch.certain < stretch.listed) continue;
-      for (const std::size_t k : stretch.certain_spans) answer_.missing.push_back(critical_of(found->values[k]));
+      for (const std::size_t k : stretch.certain_spans)
+        answer_.missing.push_back(critical_of(found->values[k]));
     }
     answer_.verdict = missing && surplus ? AuditVerdict::kMissingAndSurplus
                       : missing          ? AuditVerdict::kMissing
@@ -199,7 +216,8 @@ class Audit {
                                          : AuditVerdict::kComplete;
     if (missing && surplus) {
       answer_.sentences.emplace_back(
-          "A value listed beyond its tolerance from a true one counts twice: surplus where it is listed, missing where it is.");
+          "A value listed beyond its tolerance from a true one counts twice: surplus where it is listed, "
+          "missing where it is.");
     }
   }
 
@@ -209,7 +227,8 @@ class Audit {
     if (!asked_.find_missing || !answer_.missing.empty()) return {};
     for (const AuditGap& gap : answer_.gaps) {
       if (gap.counted <= gap.listed || !std::isfinite(gap.low)) continue;
-      auto found = bracket_by_counts(counter_, request_, {gap.low, gap.high}, std::nullopt, false, known_, outcome_);
+      auto found =
+          bracket_by_counts(counter_, request_, {gap.low, gap.high}, std::nullopt, false, known_, outcome_);
       if (!found.ok()) return found.status();
       for (const FoundValues& values : found->values) answer_.missing.push_back(critical_of(values));
     }
@@ -243,8 +262,8 @@ class Audit {
   bool unresolved_ = false;
 };
 
-Result<Outcome> audit_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
-                            Outcome outcome) {
+Result<Outcome> audit_model(ModelInput model, const Request& request, const RunContext& context,
+                            ThreadPool& pool, Outcome outcome) {
   auto list = read_values(request.audit.values);
   if (!list.ok()) return list.status();
   PencilCounter counter(request, context, pool, outcome);

@@ -19,7 +19,8 @@ std::string number(double value) {
 
 class Bracketer {
  public:
-  Bracketer(PencilCounter& counter, const Request& request, const RunContext& context, ThreadPool& pool, Outcome& outcome)
+  Bracketer(PencilCounter& counter, const Request& request, const RunContext& context, ThreadPool& pool,
+            Outcome& outcome)
       : counter_(counter),
         request_(request),
         asked_(request.bracket),
@@ -52,7 +53,8 @@ class Bracketer {
   }
 
  private:
-  /// In the pencil's unit. `--below B` of factors is the range between 0 and B; of eigenvalues, everything below B.
+  /// In the pencil's unit. `--below B` of factors is the range between 0 and B; of eigenvalues, everything
+  /// below B.
   ValueRange asked_range() const {
     ValueRange range;
     if (asked_.first) return range;
@@ -71,9 +73,11 @@ class Bracketer {
            request_.precision == Precision::kDouble;
   }
 
-  // ---- is there none ------------------------------------------------------------------------------------------------
+  // ---- is there none
+  // ------------------------------------------------------------------------------------------------
 
-  /// K + b G and K - b G both definite: so is K, their mean, and everything between. True when that settles it.
+  /// K + b G and K - b G both definite: so is K, their mean, and everything between. True when that settles
+  /// it.
   Result<bool> safe_on_both_sides(const ValueRange& range) {
     if (*range.low > 0 || *range.high < 0) return false;
     const double reach = std::max(-*range.low, *range.high);
@@ -90,15 +94,18 @@ class Bracketer {
     const Level level = std::min(both[0].certificate.level, both[1].certificate.level);
     std::optional<double> failure;
     if (level == Level::kStatistical) {
-      failure = both[0].certificate.failure_probability.value_or(0) + both[1].certificate.failure_probability.value_or(0);
+      failure = both[0].certificate.failure_probability.value_or(0) +
+                both[1].certificate.failure_probability.value_or(0);
     }
     answer_.complete = CountedRange{*range.low, *range.high, 0, level, failure};
     if (*range.low == 0 || *range.high == 0) {
-      answer_.other_side = *range.low == 0 ? CountedRange{-reach, 0, 0, level, failure} : CountedRange{0, reach, 0, level, failure};
+      answer_.other_side = *range.low == 0 ? CountedRange{-reach, 0, 0, level, failure}
+                                           : CountedRange{0, reach, 0, level, failure};
     }
     answer_.none_below = true;
-    answer_.sentences.push_back("K + f G is positive definite at every f in [" + number(-reach) + ", " + number(reach) +
-                                "], because it is at the ends (convexity): no critical factor lies there, of either sign.");
+    answer_.sentences.push_back(
+        "K + f G is positive definite at every f in [" + number(-reach) + ", " + number(reach) +
+        "], because it is at the ends (convexity): no critical factor lies there, of either sign.");
     return true;
   }
 
@@ -116,16 +123,19 @@ class Bracketer {
     }
   }
 
-  // ---- brackets -------------------------------------------------------------------------------------------------
+  // ---- brackets
+  // -------------------------------------------------------------------------------------------------
 
   Result<bool> by_residuals(const ValueRange& range) {
-    auto answer = bracket_by_residuals(counter_, request_, context_, {range, asked_.first, asked_.side}, pool_, outcome_);
+    auto answer = bracket_by_residuals(counter_, request_, context_, {range, asked_.first, asked_.side},
+                                       pool_, outcome_);
     if (!answer.ok()) return answer.status();
     known_ = std::move(answer->counts);
     if (!answer->found) {
       if (counter_.kind() != CountKind::kDirections) {
         counter_.warn("residuals-not-enough",
-                      "mode shapes and residuals could not account for every value that was counted; bisection by counts "
+                      "mode shapes and residuals could not account for every value that was counted; "
+                      "bisection by counts "
                       "goes on instead");
       }
       return false;
@@ -144,7 +154,8 @@ class Bracketer {
     const bool both = asked_.first && asked_.side == Side::kBoth && counter_.two_sided();
     std::vector<CountedRange> ends;
     for (const bool negative : {true, false}) {
-      if (asked_.first && !both && negative != (asked_.side == Side::kNegative && counter_.two_sided())) continue;
+      if (asked_.first && !both && negative != (asked_.side == Side::kNegative && counter_.two_sided()))
+        continue;
       if (!asked_.first && negative) continue;
       auto found = bracket_by_counts(counter_, request_, range, asked_.first, negative, known_, outcome_);
       if (!found.ok()) return found.status();
@@ -161,18 +172,20 @@ class Bracketer {
     return {};
   }
 
-  /// Of the first ones on either side those nearest to 0 are the first of both. `ends`: how far each side is complete; so
-  /// far, and up to the first value left out, both are.
+  /// Of the first ones on either side those nearest to 0 are the first of both. `ends`: how far each side is
+  /// complete; so far, and up to the first value left out, both are.
   void keep_nearest(const std::vector<CountedRange>& ends) {
     std::vector<CriticalValue> all = std::move(answer_.critical);
-    std::sort(all.begin(), all.end(),
-              [](const CriticalValue& a, const CriticalValue& b) { return std::fabs(a.value) < std::fabs(b.value); });
+    std::sort(all.begin(), all.end(), [](const CriticalValue& a, const CriticalValue& b) {
+      return std::fabs(a.value) < std::fabs(b.value);
+    });
     double reach = ends.size() == 2 ? INFINITY : 0, outermost = 0;
     CountedRange complete{0, 0, Index{0}, Level::kProved, std::nullopt};
     for (const CountedRange& end : ends) {
       reach = std::min(reach, std::max(std::fabs(end.from), std::fabs(end.to)));
       complete.level = std::min(complete.level, end.level);
-      if (end.failure_probability) complete.failure_probability = complete.failure_probability.value_or(0) + *end.failure_probability;
+      if (end.failure_probability)
+        complete.failure_probability = complete.failure_probability.value_or(0) + *end.failure_probability;
     }
     answer_.critical.clear();
     for (CriticalValue& value : all) {
@@ -212,11 +225,13 @@ class Bracketer {
 
   void say_number_found(Index fewer) {
     if (fewer == 0) return;
-    counter_.warn("fewer-than-asked", std::to_string(fewer) + " of the values asked do not exist in the range that was searched" +
-                                          (answer_.complete ? ", up to " + number(std::max(std::fabs(answer_.complete->to),
-                                                                             std::isfinite(answer_.complete->from)
-                                                                                 ? std::fabs(answer_.complete->from)
-                                                                                 : 0.0)) : ""));
+    counter_.warn("fewer-than-asked",
+                  std::to_string(fewer) + " of the values asked do not exist in the range that was searched" +
+                      (answer_.complete ? ", up to " + number(std::max(std::fabs(answer_.complete->to),
+                                                                       std::isfinite(answer_.complete->from)
+                                                                           ? std::fabs(answer_.complete->from)
+                                                                           : 0.0))
+                                        : ""));
   }
 
   /// K is not definite (said already): the inertia at the ends is all there is.
@@ -226,17 +241,19 @@ class Bracketer {
       auto count = counter_.count(*end);
       if (!count.ok()) return count.status();
       if (!count->below) continue;
-      answer_.sentences.push_back("At " + number(*end) + " there are " + std::to_string(*count->below) + " " + count->meaning +
-                                  "; no number of values follows from that.");
+      answer_.sentences.push_back("At " + number(*end) + " there are " + std::to_string(*count->below) + " " +
+                                  count->meaning + "; no number of values follows from that.");
     }
     return {};
   }
 
-  // ---- the side nobody asked about ----------------------------------------------------------------------------------
+  // ---- the side nobody asked about
+  // ----------------------------------------------------------------------------------
 
   Status look_at_other_side(const ValueRange& range) {
     if (request_.pencil != Pencil::kGeometric || !counter_.two_sided() || !answer_.complete) return {};
-    const double low = range.low.value_or(answer_.complete->from), high = range.high.value_or(answer_.complete->to);
+    const double low = range.low.value_or(answer_.complete->from),
+                 high = range.high.value_or(answer_.complete->to);
     const double inner_low = asked_.first ? answer_.complete->from : low;
     const double inner_high = asked_.first ? answer_.complete->to : high;
     if (inner_low < 0 && inner_high > 0) return {};
@@ -246,14 +263,16 @@ class Bracketer {
     if (!other) return {};
     const auto fact = counter_.fact(*other);
     if (!fact) return {};
-    CountedRange range_there{std::min(0.0, other->shift), std::max(0.0, other->shift), other->below, fact->level, std::nullopt};
+    CountedRange range_there{std::min(0.0, other->shift), std::max(0.0, other->shift), other->below,
+                             fact->level, std::nullopt};
     if (fact->level == Level::kStatistical) range_there.failure_probability = fact->failure_probability;
     if (!other->below) range_there.level = Level::kNone;
     answer_.other_side = range_there;
     const bool none_here = answer_.complete->count == 0;
     if (none_here && other->below.value_or(1) > 0) {
       counter_.warn("factors-only-on-the-other-side",
-                    "there are critical factors on the other side of 0 only: a wrong sign of G would read as safe. Remedy: "
+                    "there are critical factors on the other side of 0 only: a wrong sign of G would read as "
+                    "safe. Remedy: "
                     "make sure of the convention, or ask for both sides");
     }
     return {};
@@ -269,8 +288,8 @@ class Bracketer {
   Staircase known_;
 };
 
-Result<Outcome> bracket_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
-                              Outcome outcome) {
+Result<Outcome> bracket_model(ModelInput model, const Request& request, const RunContext& context,
+                              ThreadPool& pool, Outcome outcome) {
   PencilCounter counter(request, context, pool, outcome);
   if (Status status = counter.prepare(std::move(model)); !status.ok()) return status;
   if (Status status = Bracketer(counter, request, context, pool, outcome).run(); !status.ok()) return status;

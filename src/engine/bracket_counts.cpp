@@ -36,7 +36,8 @@ class Bisection {
   }
 
  private:
-  using Numbers = std::pair<Offset, Offset>;  ///< half open; value number k lies where n grows from k - 1 to k
+  using Numbers =
+      std::pair<Offset, Offset>;  ///< half open; value number k lies where n grows from k - 1 to k
 
   double base_failure() const { return counter_.base().failure_probability.value_or(0); }
 
@@ -52,7 +53,8 @@ class Bisection {
     auto fact = counter_.fact(*count);
     if (fact) staircase_.add(*fact);
     if (!staircase_.contradictions().empty()) {
-      return Status::internal("certified counts contradict each other: a fault of the machine, its BLAS, or the program");
+      return Status::internal(
+          "certified counts contradict each other: a fault of the machine, its BLAS, or the program");
     }
     return fact;
   }
@@ -88,7 +90,8 @@ class Bisection {
       below = (*lowest)->most;
       auto at_zero = fact_at(0);
       if (!at_zero.ok()) return at_zero.status();
-      if (*at_zero) first += static_cast<Index>((*at_zero)->most - (*at_zero)->least);  // rigid body modes are apart
+      if (*at_zero)
+        first += static_cast<Index>((*at_zero)->most - (*at_zero)->least);  // rigid body modes are apart
     }
     Offset reached = 0;
     for (int k = 0; k < kMostDoublings; ++k, shift *= 4) {
@@ -122,7 +125,8 @@ class Bisection {
       if (!bracket) return {};
       const double size = std::max(std::fabs(bracket->low), std::fabs(bracket->high));
       const double width = bracket->high - bracket->low;
-      if (width <= request_.bracket.width * size || width < 0x1p-60 * counter_.pencil().size_ratio()) return {};
+      if (width <= request_.bracket.width * size || width < 0x1p-60 * counter_.pencil().size_ratio())
+        return {};
       // Far apart ends of one sign: the geometric middle gains digits faster.
       const bool spread = bracket->low > 0 && bracket->high > 4 * bracket->low;
       const bool spread_negative = bracket->high < 0 && bracket->low < 4 * bracket->high;
@@ -221,7 +225,8 @@ class Bisection {
 }  // namespace
 
 Result<FoundRange> bracket_by_counts(PencilCounter& counter, const Request& request, const ValueRange& range,
-                                     std::optional<Index> first, bool negative, Staircase known, Outcome& outcome) {
+                                     std::optional<Index> first, bool negative, Staircase known,
+                                     Outcome& outcome) {
   return Bisection(counter, request, std::move(known), outcome).run(range, first, negative);
 }
 

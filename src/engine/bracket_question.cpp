@@ -8,7 +8,8 @@ void within_document(std::optional<double>& failure_probability, const Outcome& 
   if (failure_probability) *failure_probability = std::min(*failure_probability, outcome.risk);
 }
 
-CountedRange counted_range(const std::optional<CountFact>& low, const CountFact& high, double from, double to) {
+CountedRange counted_range(const std::optional<CountFact>& low, const CountFact& high, double from,
+                           double to) {
   CountedRange range{from, to, std::nullopt, Level::kProved, std::nullopt};
   double failure = 0;
   const auto take = [&](const CountFact& fact) {

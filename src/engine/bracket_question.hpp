@@ -34,6 +34,7 @@ struct FoundRange {
 };
 
 /// A counted range from two facts; level and failure probability of both.
-CountedRange counted_range(const std::optional<CountFact>& low, const CountFact& high, double from, double to);
+CountedRange counted_range(const std::optional<CountFact>& low, const CountFact& high, double from,
+                           double to);
 
 }  // namespace stanchion

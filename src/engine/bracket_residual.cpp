@@ -13,9 +13,11 @@
 namespace stanchion {
 namespace {
 
-/// Below this many operations one more factorization costs less than anyone notices, and a proof says more than a test.
+/// Below this many operations one more factorization costs less than anyone notices, and a proof says more
+/// than a test.
 constexpr double kProofIsCheap = 2e9;
-/// An end of the range lies in a gap of at least this relative width, so that the count there is easily certified.
+/// An end of the range lies in a gap of at least this relative width, so that the count there is easily
+/// certified.
 constexpr double kGap = 1e-5;
 /// Values this far below the largest are rounding, not values.
 constexpr double kNoise = 1e-13;
@@ -54,7 +56,8 @@ class ResidualBrackets {
   }
 
  private:
-  // ---- the definite matrix whose factor is kept -----------------------------------------------------------------
+  // ---- the definite matrix whose factor is kept
+  // -----------------------------------------------------------------
 
   bool small() const { return counter_.pencil().analysis().forecast.factor_flops < kProofIsCheap; }
 
@@ -76,7 +79,8 @@ class ResidualBrackets {
     return counter_.judge();
   }
 
-  /// K + tau M: tau = 0 where K is definite, else large enough, and of the size of the lowest values that are not zero.
+  /// K + tau M: tau = 0 where K is definite, else large enough, and of the size of the lowest values that are
+  /// not zero.
   Status settle_shifted_base() {
     auto plain = try_base(0);
     if (!plain.ok()) return plain.status();
@@ -134,12 +138,14 @@ class ResidualBrackets {
     return true;
   }
 
-  // ---- between values and thetas --------------------------------------------------------------------------------
+  // ---- between values and thetas
+  // --------------------------------------------------------------------------------
 
   double shift_of(double theta) const { return 1 / theta - tau_; }
   double theta_of(double shift) const { return 1 / (shift + tau_); }
 
-  // ---- approximations -------------------------------------------------------------------------------------------
+  // ---- approximations
+  // -------------------------------------------------------------------------------------------
 
   bool interrupted() const { return context_.cancel != nullptr && context_.cancel->cancelled(); }
 
@@ -148,7 +154,8 @@ class ResidualBrackets {
     const Index order = rows.rows();
     const Offset room = counter_.pencil().free_bytes() / 2 / (Offset{order} * Offset{sizeof(double)} + 1);
     Offset most = std::max<Offset>(16 * kV, (5 * Offset{wanted} / 2 + 8 * kV + kV - 1) / kV * kV);
-    most = std::min({most, std::max<Offset>(room / kV * kV, 6 * kV), std::max<Offset>(order / kV * kV, 6 * kV)});
+    most =
+        std::min({most, std::max<Offset>(room / kV * kV, 6 * kV), std::max<Offset>(order / kV * kV, 6 * kV)});
     const auto apply = [this, &rows](double* block) {
       base_->transposed_solve(block);
       work_.resize(static_cast<std::size_t>(rows.rows()) * static_cast<std::size_t>(kV));
@@ -161,7 +168,8 @@ class ResidualBrackets {
     outcome_.memory.forecast =
         std::max(outcome_.memory.forecast, resident_bytes() + doubles * Offset{sizeof(double)} +
                                                counter_.pencil().analysis().forecast.peak_bytes_solve);
-    return {apply, order, static_cast<Index>(most), CounterRandom::combine(counter_.pencil().seed(), 0x5c31), pool_};
+    return {apply, order, static_cast<Index>(most), CounterRandom::combine(counter_.pencil().seed(), 0x5c31),
+            pool_};
   }
 
   double closeness() const { return 0.1 * request_.bracket.width; }
@@ -185,7 +193,8 @@ class ResidualBrackets {
     const Index most = wanted + kBlockVectors;
     if (!counter_.two_sided()) return {most, 0};
     if (!question_.first || question_.side == Side::kBoth) return {most, most};
-    return question_.side == Side::kPositive ? KeptValues{most, kBlockVectors} : KeptValues{kBlockVectors, most};
+    return question_.side == Side::kPositive ? KeptValues{most, kBlockVectors}
+                                             : KeptValues{kBlockVectors, most};
   }
 
   /// Steps until `enough` says so; false when the space is exhausted or the steps are used up first.
@@ -196,7 +205,8 @@ class ResidualBrackets {
     for (;;) {
       if (interrupted()) return Status::interrupted();
       const bool more = lanczos.steps() < most_steps && lanczos.step(keep(wanted));
-      if (context_.progress) context_.progress("modes", std::min(1.0, lanczos.steps() / (6.0 + wanted / 3.0)));
+      if (context_.progress)
+        context_.progress("modes", std::min(1.0, lanczos.steps() / (6.0 + wanted / 3.0)));
       if (more && lanczos.steps() < next_look) continue;
       if (enough()) return true;
       if (!more) return false;
@@ -213,7 +223,8 @@ class ResidualBrackets {
       if (interrupted()) return Status::interrupted();
       std::vector<RitzValue> chosen;
       for (std::size_t k = first; k < std::min(first + kV, many); ++k) chosen.push_back(list[k].ritz);
-      append(pairs, residual_pairs(*base_, second_, lanczos.vectors(chosen), static_cast<Index>(chosen.size())));
+      append(pairs,
+             residual_pairs(*base_, second_, lanczos.vectors(chosen), static_cast<Index>(chosen.size())));
     }
     if (!pairs.empty() && worst(pairs) > request_.bracket.width / 3) refine(pairs);
     return pairs;
@@ -248,7 +259,8 @@ class ResidualBrackets {
     if (worst(fresh) < worst(pairs)) pairs = std::move(fresh);
   }
 
-  // ---- counts and groups ----------------------------------------------------------------------------------------
+  // ---- counts and groups
+  // ----------------------------------------------------------------------------------------
 
   Result<std::optional<CountFact>> count_at(double shift) {
     for (const CountFact& fact : answer_.counts.facts()) {
@@ -261,7 +273,8 @@ class ResidualBrackets {
     auto fact = counter_.fact(*count);
     if (fact) answer_.counts.add(*fact);
     if (!answer_.counts.contradictions().empty()) {
-      return Status::internal("certified counts contradict each other: a fault of the machine, its BLAS, or the program");
+      return Status::internal(
+          "certified counts contradict each other: a fault of the machine, its BLAS, or the program");
     }
     return fact;
   }
@@ -291,10 +304,10 @@ class ResidualBrackets {
     return found;
   }
 
-  /// Whether the groups inside (from, to) are all that the counts at the two ends say there is. Too many would contradict a
-  /// certified count: a fault. When they are all, they are the answer.
-  Result<bool> settle(const std::vector<ResidualPair>& pairs, const std::optional<CountFact>& low, const CountFact& high,
-                      double from, double to) {
+  /// Whether the groups inside (from, to) are all that the counts at the two ends say there is. Too many
+  /// would contradict a certified count: a fault. When they are all, they are the answer.
+  Result<bool> settle(const std::vector<ResidualPair>& pairs, const std::optional<CountFact>& low,
+                      const CountFact& high, double from, double to) {
     const CountedRange range = counted_range(low, high, from, to);
     if (!range.count) return false;
     FoundRange found;
@@ -307,8 +320,9 @@ class ResidualBrackets {
       found.values.push_back(std::move(values));
     }
     if (sum > *range.count) {
-      return Status::internal("more values lie in disjoint residual intervals than a certified count allows: a fault of the "
-                              "machine, its BLAS, or the program");
+      return Status::internal(
+          "more values lie in disjoint residual intervals than a certified count allows: a fault of the "
+          "machine, its BLAS, or the program");
     }
     if (sum < *range.count) return false;
     std::sort(found.values.begin(), found.values.end(),
@@ -323,14 +337,16 @@ class ResidualBrackets {
     return true;
   }
 
-  // ---- a range --------------------------------------------------------------------------------------------------
+  // ---- a range
+  // --------------------------------------------------------------------------------------------------
 
   Result<bool> bracket_range() {
     const ValueRange& range = question_.range;
     std::optional<CountFact> low, high;
     if (counter_.two_sided()) {
       // K is definite: n(0) = 0, and 0 itself is never a value.
-      const CountFact zero{0, 0, 0, std::nullopt, counter_.base().level, counter_.base().failure_probability.value_or(0)};
+      const CountFact zero{
+          0, 0, 0, std::nullopt, counter_.base().level, counter_.base().failure_probability.value_or(0)};
       for (auto [fact, end] : {std::pair{&low, *range.low}, std::pair{&high, *range.high}}) {
         if (end == 0) {
           *fact = zero;
@@ -366,9 +382,11 @@ class ResidualBrackets {
     for (int attempt = 0; attempt < kMostAttempts; ++attempt) {
       std::vector<Candidate> chosen;
       auto enough = iterate(lanczos, wanted, [&] {
-        const Candidates up = candidates(lanczos, Side::kPositive), down = candidates(lanczos, Side::kNegative);
+        const Candidates up = candidates(lanczos, Side::kPositive),
+                         down = candidates(lanczos, Side::kNegative);
         chosen = inside(up, down, from, to);
-        return up.leading >= static_cast<std::size_t>(positive) && down.leading >= static_cast<std::size_t>(negative);
+        return up.leading >= static_cast<std::size_t>(positive) &&
+               down.leading >= static_cast<std::size_t>(negative);
       });
       if (!enough.ok()) return enough.status();
       auto pairs = pairs_of(lanczos, chosen, chosen.size());
@@ -391,14 +409,16 @@ class ResidualBrackets {
     return chosen;
   }
 
-  // ---- the first ones -------------------------------------------------------------------------------------------
+  // ---- the first ones
+  // -------------------------------------------------------------------------------------------
 
-  /// How many of `found` to take: `wanted`, and what is not told apart from the last of them; 0 as long as the next one is
-  /// not known well enough.
+  /// How many of `found` to take: `wanted`, and what is not told apart from the last of them; 0 as long as
+  /// the next one is not known well enough.
   static std::size_t end_of_cluster(const Candidates& found, std::size_t wanted) {
     for (std::size_t many = wanted; many <= found.leading && many > 0; ++many) {
       if (many >= found.list.size()) return 0;
-      const double last = std::fabs(found.list[many - 1].ritz.value), next = std::fabs(found.list[many].ritz.value);
+      const double last = std::fabs(found.list[many - 1].ritz.value),
+                   next = std::fabs(found.list[many].ritz.value);
       const double gap = last - next;
       if (gap > kGap * last && found.list[many].ritz.residual < 0.2 * gap) return many;
       if (gap > kGap * last) return 0;
@@ -439,8 +459,8 @@ class ResidualBrackets {
   }
 
   /// The end of the range in the gap behind the last of `many`, counted, and compared.
-  Result<bool> settle_first(BlockLanczos& lanczos, const std::vector<ResidualPair>& pairs, const Candidates& found,
-                            std::size_t many, Side side, std::size_t wanted) {
+  Result<bool> settle_first(BlockLanczos& lanczos, const std::vector<ResidualPair>& pairs,
+                            const Candidates& found, std::size_t many, Side side, std::size_t wanted) {
     double theta = 0;
     if (many == 0 || many >= found.list.size() || many < wanted) {
       // Fewer than asked: look well beyond the last, or beyond the largest of the other side.
@@ -448,7 +468,8 @@ class ResidualBrackets {
       if (all.empty()) return false;
       theta = many > 0 ? std::fabs(found.list[many - 1].ritz.value) / 4 : std::fabs(all.front().value) / 16;
     } else {
-      const double last = std::fabs(found.list[many - 1].ritz.value), next = std::fabs(found.list[many].ritz.value);
+      const double last = std::fabs(found.list[many - 1].ritz.value),
+                   next = std::fabs(found.list[many].ritz.value);
       theta = next + 0.5 * (last - next);
     }
     double end = round_between(shift_of(theta * (1 - 0.2 * gap_of(found, many, theta))),
@@ -459,7 +480,8 @@ class ResidualBrackets {
       if (!*reached) return false;  // there are more, too far out for this space
     }
     std::optional<CountFact> low, high;
-    const CountFact zero{0, 0, 0, std::nullopt, counter_.base().level, counter_.base().failure_probability.value_or(0)};
+    const CountFact zero{
+        0, 0, 0, std::nullopt, counter_.base().level, counter_.base().failure_probability.value_or(0)};
     if (side != Side::kNegative) {
       auto counted = count_at(end);
       if (!counted.ok()) return counted.status();
@@ -479,7 +501,8 @@ class ResidualBrackets {
     return settle(pairs, low, *high, from, high->shift);
   }
 
-  /// Moves `end` outwards in a few long strides, as long as the counts there find no more than `many`; false when they do.
+  /// Moves `end` outwards in a few long strides, as long as the counts there find no more than `many`; false
+  /// when they do.
   Result<bool> look_further(double& end, Side side, Offset many) {
     constexpr int kStrides = 4;
     constexpr double kStride = 32;
@@ -535,8 +558,9 @@ class ResidualBrackets {
 
 }  // namespace
 
-Result<ResidualAnswer> bracket_by_residuals(PencilCounter& counter, const Request& request, const RunContext& context,
-                                            const ResidualQuestion& question, ThreadPool& pool, Outcome& outcome) {
+Result<ResidualAnswer> bracket_by_residuals(PencilCounter& counter, const Request& request,
+                                            const RunContext& context, const ResidualQuestion& question,
+                                            ThreadPool& pool, Outcome& outcome) {
   return ResidualBrackets(counter, request, context, question, pool, outcome).run();
 }
 

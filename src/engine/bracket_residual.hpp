@@ -1,4 +1,5 @@
-// Brackets from one kept factor: mode shapes, rigorous residual intervals, and counts at the ends of the range.
+// Brackets from one kept factor: mode shapes, rigorous residual intervals, and counts at the ends of the
+// range.
 #pragma once
 
 #include "engine/bracket_question.hpp"
@@ -18,11 +19,13 @@ struct ResidualAnswer {
   Index fewer_than_asked = 0;       ///< so many do not exist in the range that was searched
 };
 
-/// The values asked, in groups with disjoint intervals whose number equals the certified count of the range. Settles what
-/// counts mean, unless `counter` is judged already; when they do not count values the answer is empty. With `first` the
-/// zeros of a free body are taken in on top. Errors: those of factoring; internal when certified statements contradict
-/// each other. Cost: two to four factorizations, one of them kept, and some ten to thirty passes over it.
-Result<ResidualAnswer> bracket_by_residuals(PencilCounter& counter, const Request& request, const RunContext& context,
-                                            const ResidualQuestion& question, ThreadPool& pool, Outcome& outcome);
+/// The values asked, in groups with disjoint intervals whose number equals the certified count of the range.
+/// Settles what counts mean, unless `counter` is judged already; when they do not count values the answer is
+/// empty. With `first` the zeros of a free body are taken in on top. Errors: those of factoring; internal
+/// when certified statements contradict each other. Cost: two to four factorizations, one of them kept, and
+/// some ten to thirty passes over it.
+Result<ResidualAnswer> bracket_by_residuals(PencilCounter& counter, const Request& request,
+                                            const RunContext& context, const ResidualQuestion& question,
+                                            ThreadPool& pool, Outcome& outcome);
 
 }  // namespace stanchion

@@ -23,17 +23,18 @@ void offer_last_resort(const PreparedPencil& pencil, const Request& request, Out
   if (request.precision == Precision::kExtended || request.resolution) return;
   char seconds[32];
   std::snprintf(seconds, sizeof(seconds), "%.2g", extended_seconds_forecast(pencil.analysis()));
-  outcome.warnings.push_back({"last-resort",
-                              "double precision cannot tell the zero directions from small ones of either sign; "
-                              "--precision extended resolves some 15 digits more, in about " +
-                                  std::string(seconds) + " s a factorization",
-                              outcome.inputs.front().path});
+  outcome.warnings.push_back(
+      {"last-resort",
+       "double precision cannot tell the zero directions from small ones of either sign; "
+       "--precision extended resolves some 15 digits more, in about " +
+           std::string(seconds) + " s a factorization",
+       outcome.inputs.front().path});
 }
 
 }  // namespace
 
-Result<Outcome> check_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
-                            Outcome outcome, SharedAnalysis* shared) {
+Result<Outcome> check_model(ModelInput model, const Request& request, const RunContext& context,
+                            ThreadPool& pool, Outcome outcome, SharedAnalysis* shared) {
   const bool locate = request.want_location;
   LocationFacts facts;
   if (locate) facts = collect_location_facts(model, request, outcome);
@@ -54,17 +55,20 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
   check.inertia = certified->inertia;
   check.certificate = certified->certificate;
   check.certificate.assumptions.emplace_back(
-      "arithmetic rounds to nearest as IEEE 754 binary64 prescribes, and the dense products sum in some order");
+      "arithmetic rounds to nearest as IEEE 754 binary64 prescribes, and the dense products sum in some "
+      "order");
   check.verdict = verdict_of(check.inertia, check.certificate.level);
   explain_unresolved(*certified, outcome);
-  if (check.inertia.zero > 0 || check.verdict == Verdict::kUnresolved) offer_last_resort(*pencil, request, outcome);
+  if (check.inertia.zero > 0 || check.verdict == Verdict::kUnresolved)
+    offer_last_resort(*pencil, request, outcome);
   if (!multipliers.empty()) {
     check.constrained = judge_on_constraints(check.inertia, check.certificate, rank, original);
     if (!rank.bordered) {
-      outcome.warnings.push_back({"multipliers-coupled",
-                                  "multipliers act on each other (entries between their rows), so the structure on its "
-                                  "constraints is not judged. Remedy: check the list given to --multipliers",
-                                  outcome.inputs.front().path});
+      outcome.warnings.push_back(
+          {"multipliers-coupled",
+           "multipliers act on each other (entries between their rows), so the structure on its "
+           "constraints is not judged. Remedy: check the list given to --multipliers",
+           outcome.inputs.front().path});
     }
   }
   if (request.want_witness && check.verdict != Verdict::kPositiveDefinite) {
@@ -73,7 +77,8 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
     check.witness = std::move(*witness);
   }
   if (request.digits) {
-    auto rounded = pencil->certify(0, definite_first, pencil->digits_error(0, *request.digits), pool, outcome);
+    auto rounded =
+        pencil->certify(0, definite_first, pencil->digits_error(0, *request.digits), pool, outcome);
     if (!rounded.ok()) return rounded.status();
     check.verdict_for_digits = verdict_of(rounded->inertia, rounded->certificate.level);
   }

@@ -29,7 +29,8 @@ ConstraintRows extract_rows(const SymmetricMatrix& matrix, const std::vector<Ind
       if (mi >= 0 && mj >= 0) {
         found.bordered = false;
       } else {
-        found.rows[static_cast<std::size_t>(mi >= 0 ? mi : mj)].emplace_back(mi >= 0 ? j : i, matrix.value[k]);
+        found.rows[static_cast<std::size_t>(mi >= 0 ? mi : mj)].emplace_back(mi >= 0 ? j : i,
+                                                                             matrix.value[k]);
       }
     }
   }
@@ -164,7 +165,8 @@ ConstrainedOutcome judge_on_constraints(const Inertia& inertia, const Certificat
   ConstrainedOutcome outcome;
   outcome.multipliers = rank.multipliers;
   for (const Index equation : rank.repeated) {
-    outcome.redundant_equations.push_back((original.empty() ? equation : original[static_cast<std::size_t>(equation)]) + 1);
+    outcome.redundant_equations.push_back(
+        (original.empty() ? equation : original[static_cast<std::size_t>(equation)]) + 1);
   }
   if (!rank.bordered) return outcome;
   const Index q = rank.multipliers;

@@ -9,11 +9,12 @@ namespace stanchion {
 
 /// What is known of the rank of B, from a factorization of [I B^T; B 0] of its own.
 struct ConstraintRank {
-  Index multipliers = 0;          ///< q
-  Index least = 0, most = 0;      ///< the rank lies between; equal when known
-  Backing backing;                ///< of that statement
-  std::vector<Index> repeated;    ///< equations of multipliers whose row of B is an exact multiple of an earlier one
-  bool bordered = true;           ///< false: multipliers act on each other, the theory below does not apply
+  Index multipliers = 0;      ///< q
+  Index least = 0, most = 0;  ///< the rank lies between; equal when known
+  Backing backing;            ///< of that statement
+  std::vector<Index>
+      repeated;          ///< equations of multipliers whose row of B is an exact multiple of an earlier one
+  bool bordered = true;  ///< false: multipliers act on each other, the theory below does not apply
 };
 
 /// Certifies the rank of the constraint rows. Exact multiples of earlier rows are found and set aside first,

@@ -15,11 +15,12 @@ Status never_falls(const PencilCounter& counter, const std::vector<ShiftCount>& 
     if (const auto fact = counter.fact(count)) staircase.add(*fact);
   }
   if (staircase.contradictions().empty()) return {};
-  return Status::internal("certified counts contradict each other: a fault of the machine, its BLAS, or the program");
+  return Status::internal(
+      "certified counts contradict each other: a fault of the machine, its BLAS, or the program");
 }
 
-Result<Outcome> count_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
-                            Outcome outcome) {
+Result<Outcome> count_model(ModelInput model, const Request& request, const RunContext& context,
+                            ThreadPool& pool, Outcome outcome) {
   outcome.count.emplace();
   PencilCounter counter(request, context, pool, outcome);
   if (Status status = counter.prepare(std::move(model)); !status.ok()) return status;

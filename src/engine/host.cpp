@@ -15,7 +15,8 @@ namespace {
 
 /// A "VmXXX: n kB" line of /proc/self/status, in bytes.
 Offset status_bytes(const char* key) {
-  const std::unique_ptr<std::FILE, int (*)(std::FILE*)> file(std::fopen("/proc/self/status", "r"), &std::fclose);
+  const std::unique_ptr<std::FILE, int (*)(std::FILE*)> file(std::fopen("/proc/self/status", "r"),
+                                                             &std::fclose);
   if (!file) return 0;
   char line[256];
   long long kilobytes = 0;
@@ -30,12 +31,20 @@ Offset status_bytes(const char* key) {
 
 }  // namespace
 
-HostRecord describe_host() { return {available_processors(), blas_description(), kernels().isa}; }
+HostRecord describe_host() {
+  return {available_processors(), blas_description(), kernels().isa};
+}
 
-Offset resident_bytes() { return status_bytes("VmRSS"); }
+Offset resident_bytes() {
+  return status_bytes("VmRSS");
+}
 
-Offset total_memory_bytes() { return Offset{sysconf(_SC_PHYS_PAGES)} * sysconf(_SC_PAGE_SIZE); }
+Offset total_memory_bytes() {
+  return Offset{sysconf(_SC_PHYS_PAGES)} * sysconf(_SC_PAGE_SIZE);
+}
 
-Offset peak_resident_bytes() { return status_bytes("VmHWM"); }
+Offset peak_resident_bytes() {
+  return status_bytes("VmHWM");
+}
 
 }  // namespace stanchion

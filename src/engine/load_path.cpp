@@ -6,7 +6,8 @@ namespace stanchion {
 namespace {
 
 bool same_signs(const Inertia& a, const Inertia& b) {
-  return a.negative == b.negative && a.zero == b.zero && a.positive == b.positive && a.undecided == b.undecided;
+  return a.negative == b.negative && a.zero == b.zero && a.positive == b.positive &&
+         a.undecided == b.undecided;
 }
 
 class LoadPath {
@@ -21,7 +22,8 @@ class LoadPath {
     if (!judged.ok()) return judged;
     for (const std::string& path : request_.steps) {
       if (context_.progress) {
-        context_.progress("steps", static_cast<double>(path_.steps.size()) / static_cast<double>(request_.steps.size() + 1));
+        context_.progress("steps", static_cast<double>(path_.steps.size()) /
+                                       static_cast<double>(request_.steps.size() + 1));
       }
       judged = next(path, std::move(*judged));
       if (!judged.ok()) return judged;
@@ -30,8 +32,9 @@ class LoadPath {
     judged->path = std::move(path_);
     judged->check = std::move(deciding_);
     if (shared_.reused < static_cast<Index>(request_.steps.size())) {
-      judged->warnings.push_back({"pattern-changes", "not all matrices have one pattern: those that differ from the one before "
-                                                     "were analysed anew",
+      judged->warnings.push_back({"pattern-changes",
+                                  "not all matrices have one pattern: those that differ from the one before "
+                                  "were analysed anew",
                                   first_input_.path});
     }
     return judged;
@@ -48,7 +51,8 @@ class LoadPath {
     if (!model.ok()) return model.status();
     if (outcome.rows_analysed + outcome.rows_struck != rows_) {
       return Status::bad_input("size-mismatch",
-                               "the matrix has " + std::to_string(outcome.rows_analysed + outcome.rows_struck) +
+                               "the matrix has " +
+                                   std::to_string(outcome.rows_analysed + outcome.rows_struck) +
                                    " equations, the first of the load path has " + std::to_string(rows_),
                                path, "name matrices of one model");
     }
@@ -62,7 +66,8 @@ class LoadPath {
     if (!judged.ok()) return judged;
     const CheckOutcome& check = *judged->check;
     PathStep step{input.path, input.sha256, check.verdict, check.inertia, check.certificate, false};
-    if (check.verdict_for_digits && *check.verdict_for_digits != check.verdict) step.verdict = *check.verdict_for_digits;
+    if (check.verdict_for_digits && *check.verdict_for_digits != check.verdict)
+      step.verdict = *check.verdict_for_digits;
     step.changed = !path_.steps.empty() && !same_signs(path_.steps.back().inertia, step.inertia);
     path_.steps.push_back(step);
     const auto number = static_cast<Index>(path_.steps.size());
@@ -70,7 +75,8 @@ class LoadPath {
       path_.first_negative = number;
     }
     if (!path_.first_not_definite) deciding_ = check;
-    if (!path_.first_not_definite && step.verdict != Verdict::kPositiveDefinite) path_.first_not_definite = number;
+    if (!path_.first_not_definite && step.verdict != Verdict::kPositiveDefinite)
+      path_.first_not_definite = number;
     return judged;
   }
 
@@ -87,8 +93,8 @@ class LoadPath {
 
 }  // namespace
 
-Result<Outcome> check_load_path(ModelInput first, const Request& request, const RunContext& context, ThreadPool& pool,
-                                Outcome outcome) {
+Result<Outcome> check_load_path(ModelInput first, const Request& request, const RunContext& context,
+                                ThreadPool& pool, Outcome outcome) {
   return LoadPath(request, context, pool).run(std::move(first), std::move(outcome));
 }
 

@@ -51,7 +51,8 @@ class ModelReader {
     return {};
   }
 
-  Result<SymmetricMatrix> read(const std::string& path, MatrixRole role, const char* name, std::optional<double> factor) {
+  Result<SymmetricMatrix> read(const std::string& path, MatrixRole role, const char* name,
+                               std::optional<double> factor) {
     if (context_.cancel != nullptr && context_.cancel->cancelled()) return Status::interrupted();
     MatrixReadOptions options;
     options.role = role;
@@ -74,14 +75,16 @@ class ModelReader {
     if (!stiffness.ok()) return stiffness.status();
     model_.stiffness = std::move(*stiffness);
     if (model_.dofs && input_.dofs) {
-      if (Status same = check_dof_map_size(*model_.dofs, *input_.dofs, model_.stiffness, input_.stiffness); !same.ok()) {
+      if (Status same = check_dof_map_size(*model_.dofs, *input_.dofs, model_.stiffness, input_.stiffness);
+          !same.ok()) {
         return same;
       }
     }
     for (const AddedMatrix& added : input_.added) {
       auto matrix = read(added.path, MatrixRole::kSecond, "added", added.factor);
       if (!matrix.ok()) return matrix.status();
-      if (Status same = check_same_size(model_.stiffness, input_.stiffness, *matrix, added.path); !same.ok()) return same;
+      if (Status same = check_same_size(model_.stiffness, input_.stiffness, *matrix, added.path); !same.ok())
+        return same;
       model_.added.push_back(std::move(*matrix));
     }
     const auto& second = input_.geometric ? input_.geometric : input_.mass;
@@ -89,7 +92,8 @@ class ModelReader {
     auto matrix = input_.geometric ? read(*second, MatrixRole::kSecond, "geometric", std::nullopt)
                                    : read(*second, MatrixRole::kMass, "mass", std::nullopt);
     if (!matrix.ok()) return matrix.status();
-    if (Status same = check_same_size(model_.stiffness, input_.stiffness, *matrix, *second); !same.ok()) return same;
+    if (Status same = check_same_size(model_.stiffness, input_.stiffness, *matrix, *second); !same.ok())
+      return same;
     model_.second = std::move(*matrix);
     return {};
   }
@@ -117,7 +121,8 @@ class ModelReader {
 
   Status strike_equations() {
     if (input_.multipliers) {
-      auto list = read_equation_list(*input_.multipliers, model_.stiffness.rows, dof_map(), outcome_.warnings);
+      auto list =
+          read_equation_list(*input_.multipliers, model_.stiffness.rows, dof_map(), outcome_.warnings);
       if (!list.ok()) return list.status();
       model_.multipliers = std::move(*list);
     } else if (model_.dofs) {
@@ -145,19 +150,20 @@ class ModelReader {
   }
 
   Status inspect() {
-    auto stiffness = preflight({model_.stiffness, input_.stiffness, MatrixRole::kStiffness, dof_map(), &model_.multipliers,
-                                original()});
+    auto stiffness = preflight({model_.stiffness, input_.stiffness, MatrixRole::kStiffness, dof_map(),
+                                &model_.multipliers, original()});
     if (!stiffness.ok()) return stiffness.status();
     append(outcome_.warnings, std::move(stiffness->warnings));
     inspect_names();
     if (!model_.second) return {};
     const MatrixRole role = input_.mass ? MatrixRole::kMass : MatrixRole::kSecond;
-    auto second = preflight({*model_.second, input_.mass ? *input_.mass : *input_.geometric, role, dof_map(), nullptr,
-                             original()});
+    auto second = preflight({*model_.second, input_.mass ? *input_.mass : *input_.geometric, role, dof_map(),
+                             nullptr, original()});
     if (!second.ok()) return second.status();
     append(outcome_.warnings, std::move(second->warnings));
-    append(outcome_.warnings, compare_matrices(stiffness->facts, input_.stiffness, second->facts,
-                                               input_.mass ? *input_.mass : *input_.geometric, role, input_.load_sign_minus));
+    append(outcome_.warnings,
+           compare_matrices(stiffness->facts, input_.stiffness, second->facts,
+                            input_.mass ? *input_.mass : *input_.geometric, role, input_.load_sign_minus));
     return {};
   }
 
@@ -168,15 +174,18 @@ class ModelReader {
       if (nodes.ok()) {
         model_.nodes = std::move(*nodes);
       } else {
-        outcome_.warnings.push_back({"nodes-unusable",
-                                     "the node table cannot be used and is left out; places are not known. Reason: " +
-                                         nodes.status().message() + ". Remedy: " + nodes.status().remedy(),
-                                     nodes.status().place()});
+        outcome_.warnings.push_back(
+            {"nodes-unusable",
+             "the node table cannot be used and is left out; places are not known. Reason: " +
+                 nodes.status().message() + ". Remedy: " + nodes.status().remedy(),
+             nodes.status().place()});
       }
     }
     if (!model_.dofs) return;
-    if (request_.want_location && input_.dofs) append(outcome_.warnings, inspect_partners(*model_.dofs, *input_.dofs));
-    if (model_.nodes) append(outcome_.warnings, inspect_nodes(model_.stiffness, *model_.dofs, *model_.nodes, *input_.nodes));
+    if (request_.want_location && input_.dofs)
+      append(outcome_.warnings, inspect_partners(*model_.dofs, *input_.dofs));
+    if (model_.nodes)
+      append(outcome_.warnings, inspect_nodes(model_.stiffness, *model_.dofs, *model_.nodes, *input_.nodes));
   }
 
   const InputRequest& input_;
@@ -189,7 +198,8 @@ class ModelReader {
 
 }  // namespace
 
-Result<ModelInput> read_model(const Request& request, const RunContext& context, ThreadPool& pool, Outcome& outcome) {
+Result<ModelInput> read_model(const Request& request, const RunContext& context, ThreadPool& pool,
+                              Outcome& outcome) {
   return ModelReader(request, context, pool, outcome).run();
 }
 

@@ -14,8 +14,9 @@ std::string number(double value) {
 
 }  // namespace
 
-Result<std::optional<ShiftCount>> look_at_the_other_side(PencilCounter& counter, double lowest, double highest,
-                                                         Outcome& outcome, std::vector<std::string>& sentences) {
+Result<std::optional<ShiftCount>> look_at_the_other_side(PencilCounter& counter, double lowest,
+                                                         double highest, Outcome& outcome,
+                                                         std::vector<std::string>& sentences) {
   if (lowest < 0 && highest > 0) return std::optional<ShiftCount>{};
   const double mirror = lowest < 0 ? -lowest : -highest;
   if (mirror == 0) return std::optional<ShiftCount>{};
@@ -39,10 +40,10 @@ void say_other_side(const ShiftCount& other, Outcome& outcome, std::vector<std::
   sentences.push_back("On the other side, between " + span + ", there " + (one ? "is " : "are ") + many +
                       (one ? " critical factor: it counts" : " critical factors: they count") +
                       " if the load can reverse, or if the sign of G is the other one (--load-sign minus).");
-  outcome.warnings.push_back({"factors-on-the-other-side",
-                              "critical factors lie between " + span + " (" + many +
-                                  "); make sure of the sign convention of G",
-                              outcome.inputs.front().path});
+  outcome.warnings.push_back(
+      {"factors-on-the-other-side",
+       "critical factors lie between " + span + " (" + many + "); make sure of the sign convention of G",
+       outcome.inputs.front().path});
 }
 
 std::optional<std::string> convexity_sentence(const std::vector<ShiftCount>& counts) {

@@ -57,7 +57,8 @@ std::vector<Index> others(const std::vector<Index>& rows, Index all) {
 /// The rows and columns `keep` of a matrix.
 SymmetricMatrix principal_submatrix(const SymmetricMatrix& matrix, const std::vector<Index>& keep) {
   std::vector<Index> number_of(static_cast<std::size_t>(matrix.rows), -1);
-  for (std::size_t i = 0; i < keep.size(); ++i) number_of[static_cast<std::size_t>(keep[i])] = static_cast<Index>(i);
+  for (std::size_t i = 0; i < keep.size(); ++i)
+    number_of[static_cast<std::size_t>(keep[i])] = static_cast<Index>(i);
   std::vector<Triplet> entries;
   for (const Index j : keep) {
     for (Offset k = matrix.column_start[j]; k < matrix.column_start[Offset{j} + 1]; ++k) {
@@ -84,7 +85,8 @@ Certificate weaker(const Certificate& one, const Certificate& other) {
 
 std::string at_eigenvalue(const ShiftCount& count, Index many) {
   std::string text = "at shift " + number_text(count.shift) + " the count lies between " +
-                     std::to_string(count.below_range.first) + " and " + std::to_string(count.below_range.second);
+                     std::to_string(count.below_range.first) + " and " +
+                     std::to_string(count.below_range.second);
   if (count.holds_outside) {
     const auto [low, high] = *count.holds_outside;
     text += "; " + std::to_string(many) + (many == 1 ? " eigenvalue lies" : " eigenvalues lie") + " within " +
@@ -109,7 +111,8 @@ Status PencilCounter::prepare(ModelInput model) {
   auto pencil = PreparedPencil::make(model, alone, request_, context_, pool_, outcome_);
   if (!pencil.ok()) return pencil.status();
   pencil_ = std::move(*pencil);
-  if (alone || (mass_diagonal_ && mass_semidefinite_)) pencil_->set_second_bound_from_diagonal(alone ? std::nullopt : request_.digits);
+  if (alone || (mass_diagonal_ && mass_semidefinite_))
+    pencil_->set_second_bound_from_diagonal(alone ? std::nullopt : request_.digits);
   return {};
 }
 
@@ -133,8 +136,8 @@ void PencilCounter::accept_definite(const Certificate& why) {
   base_ = why;
 }
 
-/// M diagonal and non-negative is semidefinite for certain, and so is one that is definite on the dofs that have mass;
-/// where it is massless K must not be singular.
+/// M diagonal and non-negative is semidefinite for certain, and so is one that is definite on the dofs that
+/// have mass; where it is massless K must not be singular.
 Status PencilCounter::judge_mass(const ModelInput& model) {
   const MassFacts facts = inspect_mass(*model.second);
   mass_diagonal_ = facts.diagonal;
@@ -165,7 +168,8 @@ Status PencilCounter::judge_massless(const ModelInput& model, const std::vector<
     mass_semidefinite_ = false;
     massless_singular_ = true;
     warn("massless-and-weightless",
-         "K is singular (at the resolution) on the dofs without mass: K and M may have common null vectors, and "
+         "K is singular (at the resolution) on the dofs without mass: K and M may have common null vectors, "
+         "and "
          "then no count of eigenvalues exists; the inertia of K - s M is reported instead");
     return {};
   }
@@ -200,7 +204,8 @@ Status PencilCounter::judge_stiffness(bool any_origin) {
     kind_ = CountKind::kFromZero;
     if (request_.pencil == Pencil::kMass) {
       warn("mass-not-definite",
-           "M could not be certified positive semidefinite; K is definite, so counts are of the eigenvalues between 0 "
+           "M could not be certified positive semidefinite; K is definite, so counts are of the eigenvalues "
+           "between 0 "
            "and the shift, on either side of 0");
     }
     return {};
@@ -213,15 +218,17 @@ Status PencilCounter::judge_stiffness(bool any_origin) {
       if (*found) return {};
     }
     warn("mass-not-definite",
-         "M could not be certified positive definite, so the numbers are negative directions of K - s M, not counts of "
+         "M could not be certified positive definite, so the numbers are negative directions of K - s M, not "
+         "counts of "
          "eigenvalues below s");
     return {};
   }
-  warn("stiffness-not-definite",
-       "K itself is not positive definite (" + std::to_string(definite->inertia.negative) + " negative, " +
-           std::to_string(definite->inertia.zero) +
-           " zero directions), so no count of critical factors follows; the inertia of K + f G is reported instead. "
-           "Remedy: run `stanchion check` on K first");
+  warn("stiffness-not-definite", "K itself is not positive definite (" +
+                                     std::to_string(definite->inertia.negative) + " negative, " +
+                                     std::to_string(definite->inertia.zero) +
+                                     " zero directions), so no count of critical factors follows; the "
+                                     "inertia of K + f G is reported instead. "
+                                     "Remedy: run `stanchion check` on K first");
   return definite->inertia.zero > 0 ? look_for_common_null_vectors() : Status{};
 }
 
@@ -251,8 +258,8 @@ Result<bool> PencilCounter::look_for_origin() {
   return false;
 }
 
-/// Directions that are zero in K and in K + f G alike are zero in G, at the resolution: K + f G is then singular at every
-/// f.
+/// Directions that are zero in K and in K + f G alike are zero in G, at the resolution: K + f G is then
+/// singular at every f.
 Status PencilCounter::look_for_common_null_vectors() {
   const double size = pencil_->size_ratio();
   if (!(size > 0) || !std::isfinite(size)) return {};
@@ -266,7 +273,8 @@ Status PencilCounter::look_for_common_null_vectors() {
   if (common == 0) return {};
   warn("common-null-vectors",
        std::to_string(common) + (common == 1 ? " direction is" : " directions are") +
-           " zero in K and in G alike (at the resolution): K + f G is singular at every f, so that no critical factor is "
+           " zero in K and in G alike (at the resolution): K + f G is singular at every f, so that no "
+           "critical factor is "
            "defined. Remedy: support the model, or strike these directions out with --fix");
   return {};
 }
@@ -294,18 +302,22 @@ std::string PencilCounter::meaning(double shift) const {
   const bool factors = request_.pencil == Pencil::kGeometric;
   switch (kind_at(shift)) {
     case CountKind::kFromZero:
-      if (factors) return shift < 0 ? "critical factors between the shift and 0" : "critical factors between 0 and the shift";
+      if (factors)
+        return shift < 0 ? "critical factors between the shift and 0"
+                         : "critical factors between 0 and the shift";
       return shift < 0 ? "eigenvalues of K x = s M x between the shift and 0"
                        : "eigenvalues of K x = s M x between 0 and the shift";
     case CountKind::kBelow:
-      return request_.pencil == Pencil::kStiffness ? "eigenvalues of K strictly below the shift, in the mixed units of K"
-                                                   : "eigenvalues of K x = s M x strictly below the shift";
+      return request_.pencil == Pencil::kStiffness
+                 ? "eigenvalues of K strictly below the shift, in the mixed units of K"
+                 : "eigenvalues of K x = s M x strictly below the shift";
     case CountKind::kAbove:
       return "eigenvalues of K x = s M x above " + number_text(origin_) + " and strictly below the shift";
     case CountKind::kDirections:
       break;
   }
-  return factors ? "negative directions of K + f G at the shift" : "negative directions of K - s M at the shift";
+  return factors ? "negative directions of K + f G at the shift"
+                 : "negative directions of K - s M at the shift";
 }
 
 double PencilCounter::factor_of(double shift) const {
@@ -327,8 +339,8 @@ Result<ShiftCount> PencilCounter::count(double shift) {
 Result<ShiftCount> PencilCounter::count_apart(double shift, Index number, int share, ThreadPool& pool,
                                               Outcome& scratch) const {
   const double factor = factor_of(shift);
-  auto found = pencil_->certify_apart(factor, request_.pencil == Pencil::kGeometric, data_error(*pencil_, factor), number,
-                                      share, pool, scratch);
+  auto found = pencil_->certify_apart(factor, request_.pencil == Pencil::kGeometric,
+                                      data_error(*pencil_, factor), number, share, pool, scratch);
   if (!found.ok()) return found.status();
   return count_from(shift, *found, scratch.warnings);
 }
@@ -347,7 +359,8 @@ ShiftCount PencilCounter::count_from(double shift, const CertifiedInertia& found
   const std::string& place = outcome_.inputs.front().path;
   if (found.certificate.level == Level::kNone) {
     count.below_range = {0, outcome_.rows_analysed};
-    warnings.push_back({"unresolved", "at shift " + number_text(shift) + ": " + found.unresolved_because, place});
+    warnings.push_back(
+        {"unresolved", "at shift " + number_text(shift) + ": " + found.unresolved_because, place});
     return count;
   }
   const Index least = std::max<Index>(0, inertia.negative - negative_on_massless_);
@@ -367,8 +380,8 @@ ShiftCount PencilCounter::count_from(double shift, const CertifiedInertia& found
   return count;
 }
 
-/// A count stands on its own certificate and on those of K or M that give it its meaning: the weakest counts, and the
-/// failure probabilities add up.
+/// A count stands on its own certificate and on those of K or M that give it its meaning: the weakest counts,
+/// and the failure probabilities add up.
 void PencilCounter::rest_on(ShiftCount& count, const Certificate& own) const {
   count.level = own.level;
   double failure = own.level == Level::kStatistical ? own.failure_probability.value_or(0) : 0;
@@ -379,9 +392,10 @@ void PencilCounter::rest_on(ShiftCount& count, const Certificate& own) const {
   if (count.level == Level::kStatistical) count.failure_probability = failure;
 }
 
-/// The interval around `shift` that must hold the eigenvalues between the two counts: A_s moves by at least mu a
-/// unit of shift (or kappa a unit of relative factor), and they lie within c + eta of zero.
-std::optional<std::pair<double, double>> PencilCounter::band(double shift, const Certificate& certificate) const {
+/// The interval around `shift` that must hold the eigenvalues between the two counts: A_s moves by at least
+/// mu a unit of shift (or kappa a unit of relative factor), and they lie within c + eta of zero.
+std::optional<std::pair<double, double>> PencilCounter::band(double shift,
+                                                             const Certificate& certificate) const {
   if (!certificate.resolution || !certificate.error_bound) return std::nullopt;
   const double reach = (*certificate.resolution + *certificate.error_bound) * (1 + 0x1p-50);
   const CountKind kind = kind_at(shift);
@@ -400,15 +414,16 @@ std::optional<std::pair<double, double>> PencilCounter::band(double shift, const
 std::optional<CountFact> PencilCounter::fact(const ShiftCount& count) const {
   if (kind_at(count.shift) == CountKind::kDirections || count.certificate.level == Level::kNone)
     return std::nullopt;
-  CountFact fact{count.shift, count.below_range.first, count.below_range.second, count.holds_outside,
-                 Level::kProved, 0};
+  CountFact fact{count.shift,         count.below_range.first, count.below_range.second,
+                 count.holds_outside, Level::kProved,          0};
   if (kind_ == CountKind::kFromZero && count.shift < 0) {
     fact.least = -count.below_range.second;
     fact.most = -count.below_range.first;
   }
   if (base_.level == Level::kStatistical || count.certificate.level == Level::kStatistical) {
     fact.level = Level::kStatistical;
-    fact.failure_probability = count.certificate.failure_probability.value_or(0) + base_.failure_probability.value_or(0);
+    fact.failure_probability =
+        count.certificate.failure_probability.value_or(0) + base_.failure_probability.value_or(0);
   }
   return fact;
 }

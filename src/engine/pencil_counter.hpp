@@ -18,8 +18,8 @@ enum class CountKind {
   kDirections  ///< negative directions of the matrix at the shift, nothing else
 };
 
-/// A pencil read, analysed and judged. Refers to the request, the context, the pool and the outcome it is given, where
-/// it books time, work, risk and warnings; one document, one counter.
+/// A pencil read, analysed and judged. Refers to the request, the context, the pool and the outcome it is
+/// given, where it books time, work, risk and warnings; one document, one counter.
 class PencilCounter {
  public:
   PencilCounter(const Request& request, const RunContext& context, ThreadPool& pool, Outcome& outcome)
@@ -43,17 +43,21 @@ class PencilCounter {
 
   /// The inertia at one shift, K expected to be definite there or not, and the count that it makes.
   Result<CertifiedInertia> inertia_at(double shift, bool definite_first);
-  ShiftCount count_of(double shift, const CertifiedInertia& found) { return count_from(shift, found, outcome_.warnings); }
+  ShiftCount count_of(double shift, const CertifiedInertia& found) {
+    return count_from(shift, found, outcome_.warnings);
+  }
 
-  /// The same with a risk of its own, as event `number` of the document (from 1, each used once); everything is booked
-  /// in `scratch`. For shifts side by side, each with a pool of its own; `share` of the memory each.
-  Result<ShiftCount> count_apart(double shift, Index number, int share, ThreadPool& pool, Outcome& scratch) const;
+  /// The same with a risk of its own, as event `number` of the document (from 1, each used once); everything
+  /// is booked in `scratch`. For shifts side by side, each with a pool of its own; `share` of the memory
+  /// each.
+  Result<ShiftCount> count_apart(double shift, Index number, int share, ThreadPool& pool,
+                                 Outcome& scratch) const;
 
   /// Takes what `scratch` has booked into the document.
   void merge(const Outcome& scratch);
 
-  /// A count as a fact about the number of values; kDirections: nothing. Value number k lies where the number grows from
-  /// k - 1 to k; those below 0 have numbers from 0 downwards when the kind is kFromZero.
+  /// A count as a fact about the number of values; kDirections: nothing. Value number k lies where the number
+  /// grows from k - 1 to k; those below 0 have numbers from 0 downwards when the kind is kFromZero.
   std::optional<CountFact> fact(const ShiftCount& count) const;
 
   PreparedPencil& pencil() { return *pencil_; }

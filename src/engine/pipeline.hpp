@@ -20,8 +20,8 @@ class CountJournal {
  public:
   virtual ~CountJournal() = default;
 
-  /// Once the matrices are read, before the first count; `begun` holds the digests of the inputs. What an earlier run of
-  /// the same question has left; bad input when it was another question.
+  /// Once the matrices are read, before the first count; `begun` holds the digests of the inputs. What an
+  /// earlier run of the same question has left; bad input when it was another question.
   virtual Result<std::vector<JournalEntry>> open(const Outcome& begun) = 0;
 
   /// As soon as a count is there; never from two threads at once.
@@ -34,29 +34,32 @@ struct RunContext {
   const CancellationToken* cancel = nullptr;
   std::function<void(const std::string& line)> log;  ///< one line a stage, for --log
   CountJournal* journal = nullptr;                   ///< for sweep
-  std::function<void(const ShiftCount&)> on_count;   ///< every count of a sweep as it comes; never from two threads at once
+  std::function<void(const ShiftCount&)>
+      on_count;  ///< every count of a sweep as it comes; never from two threads at once
 };
 
-/// Reads, analyses and judges the stiffness matrix of `request` (with every --add): is it positive definite, and
-/// if not, its inertia at the resolution, with the certificate of two offset factorizations.
+/// Reads, analyses and judges the stiffness matrix of `request` (with every --add): is it positive definite,
+/// and if not, its inertia at the resolution, with the certificate of two offset factorizations.
 Result<Outcome> run_check(const Request& request, const RunContext& context);
 
-/// The same, and where and why: the outcome's `located` is set beside `check`, unless the inertia is unresolved. Unusable
-/// dof maps, node tables and axes are left out with a warning. Resource limit when the factor cannot be kept.
+/// The same, and where and why: the outcome's `located` is set beside `check`, unless the inertia is
+/// unresolved. Unusable dof maps, node tables and axes are left out with a warning. Resource limit when the
+/// factor cannot be kept.
 Result<Outcome> run_locate(const Request& request, const RunContext& context);
 
 /// Counts at every shift of `request`, in the order asked.
 Result<Outcome> run_count(const Request& request, const RunContext& context);
 
-/// Counts over a grid of shifts, side by side where memory allows, and where asked at new shifts where the count jumps.
-/// The outcome's `count` and `sweep` are set.
+/// Counts over a grid of shifts, side by side where memory allows, and where asked at new shifts where the
+/// count jumps. The outcome's `count` and `sweep` are set.
 Result<Outcome> run_sweep(const Request& request, const RunContext& context);
 
-/// The values asked, each in an interval with its multiplicity and proof, and a statement of completeness. The outcome's
-/// `bracket` is set.
+/// The values asked, each in an interval with its multiplicity and proof, and a statement of completeness.
+/// The outcome's `bracket` is set.
 Result<Outcome> run_bracket(const Request& request, const RunContext& context);
 
-/// Is the list of `request` complete in its range, and is everything in it real? The outcome's `audit` is set.
+/// Is the list of `request` complete in its range, and is everything in it real? The outcome's `audit` is
+/// set.
 Result<Outcome> run_audit(const Request& request, const RunContext& context);
 
 /// Reads and analyses only: factor size, flops, peak memory and likely time before anything is factored.

@@ -20,7 +20,8 @@ namespace stanchion {
 namespace {
 
 SymmetricMatrix identity(Index rows) {
-  SymmetricMatrix matrix{rows, Buffer<Offset>(Offset{rows} + 1), Buffer<Index>(rows), Buffer<double>(rows, 1.0)};
+  SymmetricMatrix matrix{rows, Buffer<Offset>(Offset{rows} + 1), Buffer<Index>(rows),
+                         Buffer<double>(rows, 1.0)};
   for (Index i = 0; i < rows; ++i) {
     matrix.column_start[i] = i;
     matrix.row[i] = i;
@@ -62,17 +63,20 @@ double half_unit_of(int digits) {
 /// A job of some seconds: the arithmetic is tried before it, for some tens of milliseconds.
 constexpr double kLongJobFlops = 5e10;
 
-std::string mebibytes(Offset bytes) { return std::to_string((bytes + (1 << 20) - 1) >> 20) + " MiB"; }
+std::string mebibytes(Offset bytes) {
+  return std::to_string((bytes + (1 << 20) - 1) >> 20) + " MiB";
+}
 
 bool same_pattern(const SymmetricMatrix& pattern, const SharedAnalysis& shared) {
-  return pattern.column_start.size() == shared.column_start.size() && pattern.row.size() == shared.row.size() &&
+  return pattern.column_start.size() == shared.column_start.size() &&
+         pattern.row.size() == shared.row.size() &&
          std::equal(pattern.column_start.begin(), pattern.column_start.end(), shared.column_start.begin()) &&
          std::equal(pattern.row.begin(), pattern.row.end(), shared.row.begin());
 }
 
 /// The one of the matrix before, where the pattern is the same; else a new one, kept in mind for the next.
-Result<Analysis> analysis_of(const SymmetricMatrix& pattern, const std::vector<Index>& nodes, bool second_path, int workers,
-                             SharedAnalysis* shared) {
+Result<Analysis> analysis_of(const SymmetricMatrix& pattern, const std::vector<Index>& nodes,
+                             bool second_path, int workers, SharedAnalysis* shared) {
   if (shared != nullptr && shared->analysis && same_pattern(pattern, *shared)) {
     ++shared->reused;
     Analysis analysis = std::move(*shared->analysis);
@@ -90,16 +94,19 @@ Result<Analysis> analysis_of(const SymmetricMatrix& pattern, const std::vector<I
 
 Status check_cap(const Request& request, Offset needed) {
   if (!request.memory_cap_bytes || needed <= *request.memory_cap_bytes) return {};
-  return Status::resource_limit("memory-cap",
-                                "the run is forecast to need " + mebibytes(needed) + ", more than the cap of " +
-                                    mebibytes(*request.memory_cap_bytes),
-                                request.input.stiffness,
-                                "raise --memory-cap, use fewer --threads, or give --dofs for a better ordering");
+  return Status::resource_limit(
+      "memory-cap",
+      "the run is forecast to need " + mebibytes(needed) + ", more than the cap of " +
+          mebibytes(*request.memory_cap_bytes),
+      request.input.stiffness,
+      "raise --memory-cap, use fewer --threads, or give --dofs for a better ordering");
 }
 
 }  // namespace
 
-int threads_of(const Request& request) { return request.threads > 0 ? request.threads : available_processors(); }
+int threads_of(const Request& request) {
+  return request.threads > 0 ? request.threads : available_processors();
+}
 
 Outcome begin_outcome(const char* command, const Request& request, Question question) {
   Outcome outcome;
@@ -157,12 +164,14 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   auto scale = power_of_two_scaling(pencil.family_, pencil.combination(0).coefficients);
   if (!scale.ok()) return scale.status();
   pencil.scale_ = std::move(*scale);
-  outcome.scaling_sha256 = scaling_fingerprint(pencil.scale_.span(), pencil.analysis_.tree.position_of.span());
+  outcome.scaling_sha256 =
+      scaling_fingerprint(pencil.scale_.span(), pencil.analysis_.tree.position_of.span());
   pencil.resolution_ = request.resolution;
   pencil.memory_cap_ = request.memory_cap_bytes;
   pencil.extended_ = request.precision == Precision::kExtended;
   // One document, one budget: matrices that were certified before this one have charged it already.
-  pencil.risk_ = std::make_shared<RiskBudget>(request.risk, outcome.risk, static_cast<Index>(outcome.events.size()));
+  pencil.risk_ =
+      std::make_shared<RiskBudget>(request.risk, outcome.risk, static_cast<Index>(outcome.events.size()));
   pencil.seed_ = mixed_seed(request.seed, outcome.inputs);
   pencil.factor_options_.seed = pencil.seed_;
   pencil.factor_options_.progress = context.progress;
@@ -184,7 +193,8 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
     use_single_threaded_blas();
     if (Status sound = arithmetic_selftest(SelftestLevel::kQuick); !sound.ok()) return sound;
   }
-  if (request.memory_cap_bytes) pencil.factor_options_.memory_cap_bytes = *request.memory_cap_bytes - resident;
+  if (request.memory_cap_bytes)
+    pencil.factor_options_.memory_cap_bytes = *request.memory_cap_bytes - resident;
   return pencil;
 }
 
@@ -235,8 +245,8 @@ TripletMatrix PreparedPencil::formed(double factor, double offset) const {
   return triplets;
 }
 
-Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
-                                             Outcome& outcome) {
+Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options,
+                                             ThreadPool& pool, Outcome& outcome) {
   return run_on(matrix, {options, nullptr, seed_, bytes_for_factor(), nullptr}, *risk_, pool, outcome);
 }
 
@@ -261,7 +271,8 @@ Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, con
   outcome.timings.factor += certified->seconds;
   outcome.timings.certify += certified->certify_seconds;
   if (certified->certify_seconds > 0) {  // a factor was kept
-    outcome.memory.forecast = std::max(outcome.memory.forecast, resident_before_ + analysis_.forecast.peak_bytes_solve);
+    outcome.memory.forecast =
+        std::max(outcome.memory.forecast, resident_before_ + analysis_.forecast.peak_bytes_solve);
   }
   outcome.work.factorizations += certified->factorizations;
   outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified->delayed_pivots);
@@ -311,11 +322,12 @@ Result<std::optional<DefiniteBase>> PreparedPencil::definite_base(double factor,
   auto base = DefiniteBase::make(analysis_, combination(factor), options, pool);
   if (!base.ok()) return base.status();
   ++outcome.work.factorizations;
-  outcome.memory.forecast = std::max(outcome.memory.forecast, resident_before_ + analysis_.forecast.peak_bytes_solve);
+  outcome.memory.forecast =
+      std::max(outcome.memory.forecast, resident_before_ + analysis_.forecast.peak_bytes_solve);
   outcome.risk = risk_->spent();
   if (risk_->spent() > spent_before) {
-    outcome.events.push_back({has_second_ ? std::optional(factor) : std::nullopt, risk_->spent() - spent_before,
-                              base->has_value()});
+    outcome.events.push_back({has_second_ ? std::optional(factor) : std::nullopt,
+                              risk_->spent() - spent_before, base->has_value()});
   }
   if (*base) {
     outcome.timings.factor += (*base)->factor_seconds();
@@ -360,13 +372,13 @@ Result<CertifiedInertia> PreparedPencil::certify(double factor, bool definite_fi
 }
 
 Result<CertifiedInertia> PreparedPencil::certify_keeping(std::optional<double> resolution, double data_error,
-                                                         std::optional<KeptFactorization>& kept, ThreadPool& pool,
-                                                         Outcome& outcome) {
+                                                         std::optional<KeptFactorization>& kept,
+                                                         ThreadPool& pool, Outcome& outcome) {
   const Offset needed = analysis_.forecast.peak_bytes_solve;
   if (needed > bytes_for_factor()) {
     return Status::resource_limit("memory-cap",
-                                  "keeping the factor, which locating needs, is forecast to take " + mebibytes(needed) +
-                                      " beside what is in use, more than there is",
+                                  "keeping the factor, which locating needs, is forecast to take " +
+                                      mebibytes(needed) + " beside what is in use, more than there is",
                                   outcome.inputs.empty() ? "" : outcome.inputs.front().path,
                                   "raise --memory-cap, use a larger machine, or ask check without --locate");
   }
@@ -416,8 +428,9 @@ void PreparedPencil::set_second_bound_from_diagonal(std::optional<int> digits) {
   if (digits) second_bound_ *= 1 - half_unit_of(*digits);
 }
 
-Result<std::optional<Witness>> PreparedPencil::find_witness(const std::vector<Index>& original, Index file_rows,
-                                                            ThreadPool& pool, Outcome& outcome) {
+Result<std::optional<Witness>> PreparedPencil::find_witness(const std::vector<Index>& original,
+                                                            Index file_rows, ThreadPool& pool,
+                                                            Outcome& outcome) {
   FactorOptions options = factor_options_;
   options.keep_factor = true;
   const ShiftedMatrix matrix = combination(0);

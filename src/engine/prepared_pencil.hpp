@@ -28,13 +28,14 @@ struct SharedAnalysis {
 class PreparedPencil {
  public:
   /// Takes the matrices out of `model`. `with_identity`: the second member is I (shifts of K alone).
-  /// Fills timings, work and the memory forecast of `outcome`, and refuses what the cap cannot hold. Goes on with the
-  /// risk that `outcome` has spent: one document, one budget. `shared`: see leave_analysis().
+  /// Fills timings, work and the memory forecast of `outcome`, and refuses what the cap cannot hold. Goes on
+  /// with the risk that `outcome` has spent: one document, one budget. `shared`: see leave_analysis().
   static Result<PreparedPencil> make(ModelInput& model, bool with_identity, const Request& request,
                                      const RunContext& context, ThreadPool& pool, Outcome& outcome,
                                      SharedAnalysis* shared = nullptr);
 
-  /// Ends the pencil's use and leaves its analysis for the next matrix; make() takes it where the pattern is the same.
+  /// Ends the pencil's use and leaves its analysis for the next matrix; make() takes it where the pattern is
+  /// the same.
   void leave_analysis(SharedAnalysis& shared) { shared.analysis = std::move(analysis_); }
 
   /// Certified inertia of K (with what is added) + factor * second. `definite_first`: see OffsetOptions.
@@ -42,10 +43,11 @@ class PreparedPencil {
   Result<CertifiedInertia> certify(double factor, bool definite_first, double data_error, ThreadPool& pool,
                                    Outcome& outcome);
 
-  /// As certify(), with a risk of its own: what event `number` of the document may fail with. Safe to call side by side,
-  /// each call with its own `pool` and `scratch`; each may keep a factor in one of `share` parts of the memory.
-  Result<CertifiedInertia> certify_apart(double factor, bool definite_first, double data_error, Index number, int share,
-                                         ThreadPool& pool, Outcome& scratch) const;
+  /// As certify(), with a risk of its own: what event `number` of the document may fail with. Safe to call
+  /// side by side, each call with its own `pool` and `scratch`; each may keep a factor in one of `share`
+  /// parts of the memory.
+  Result<CertifiedInertia> certify_apart(double factor, bool definite_first, double data_error, Index number,
+                                         int share, ThreadPool& pool, Outcome& scratch) const;
 
   /// Numbers for `many` calls of certify_apart: the first of them.
   Index reserve_events(Index many) { return risk_->reserve(many); }
@@ -56,11 +58,11 @@ class PreparedPencil {
   /// How many factorizations may run side by side, each with the forecast memory, at most `most`.
   int side_by_side(int most) const;
 
-  /// K with what is added plus `factor` times the second matrix, definite, with its factor kept; nothing when it is not
-  /// definite. `smallest_eigenvalue`: a proved bound of it, or 0. Charged to the document where a test is needed. The base
-  /// refers to this pencil and to `pool`.
-  Result<std::optional<DefiniteBase>> definite_base(double factor, double smallest_eigenvalue, ThreadPool& pool,
-                                                    Outcome& outcome);
+  /// K with what is added plus `factor` times the second matrix, definite, with its factor kept; nothing when
+  /// it is not definite. `smallest_eigenvalue`: a proved bound of it, or 0. Charged to the document where a
+  /// test is needed. The base refers to this pencil and to `pool`.
+  Result<std::optional<DefiniteBase>> definite_base(double factor, double smallest_eigenvalue,
+                                                    ThreadPool& pool, Outcome& outcome);
 
   /// `coefficient` times the second matrix, scaled, in elimination order.
   ShiftedMatrix second(double coefficient) const;
@@ -74,19 +76,21 @@ class PreparedPencil {
   /// ||S K S|| over ||S (second) S||, in the infinity norm: the factor at which the two are of one size.
   double size_ratio() const;
 
-  /// As certify(0, ...), by two offsets in double precision, leaving the factor of A_s - cI in `kept`. `resolution`: the
-  /// offset c to use; absent: chosen, and not sharpened where zeros are left. Resource limit "memory-cap" when the factor
-  /// cannot be kept.
+  /// As certify(0, ...), by two offsets in double precision, leaving the factor of A_s - cI in `kept`.
+  /// `resolution`: the offset c to use; absent: chosen, and not sharpened where zeros are left. Resource
+  /// limit "memory-cap" when the factor cannot be kept.
   Result<CertifiedInertia> certify_keeping(std::optional<double> resolution, double data_error,
-                                           std::optional<KeptFactorization>& kept, ThreadPool& pool, Outcome& outcome);
+                                           std::optional<KeptFactorization>& kept, ThreadPool& pool,
+                                           Outcome& outcome);
 
-  /// A vector x with x^T A x < 0 beyond its rounding, A = K with what is added; nothing when none is found. Its entries
-  /// are placed by `original` (see ModelInput) among `file_rows` equations. Keeps a factor for the while.
-  Result<std::optional<Witness>> find_witness(const std::vector<Index>& original, Index file_rows, ThreadPool& pool,
-                                              Outcome& outcome);
+  /// A vector x with x^T A x < 0 beyond its rounding, A = K with what is added; nothing when none is found.
+  /// Its entries are placed by `original` (see ModelInput) among `file_rows` equations. Keeps a factor for
+  /// the while.
+  Result<std::optional<Witness>> find_witness(const std::vector<Index>& original, Index file_rows,
+                                              ThreadPool& pool, Outcome& outcome);
 
-  /// mu with S (second) S >= mu I, S the pencil's scaling, from a certified bound for the second matrix under its own
-  /// scaling; 0 when nothing follows. For K alone the second matrix is I.
+  /// mu with S (second) S >= mu I, S the pencil's scaling, from a certified bound for the second matrix under
+  /// its own scaling; 0 when nothing follows. For K alone the second matrix is I.
   double second_matrix_bound() const { return second_bound_; }
 
   /// For a diagonal second matrix; `digits`: for every matrix that rounds to it.
@@ -118,8 +122,8 @@ class PreparedPencil {
   double digits_error(const ShiftedMatrix& matrix, int digits) const;
   Result<CertifiedInertia> run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                Outcome& outcome);
-  Result<CertifiedInertia> run_on(const ShiftedMatrix& matrix, const CertifyOptions& options, RiskBudget& risk,
-                                  ThreadPool& pool, Outcome& outcome) const;
+  Result<CertifiedInertia> run_on(const ShiftedMatrix& matrix, const CertifyOptions& options,
+                                  RiskBudget& risk, ThreadPool& pool, Outcome& outcome) const;
   Offset counting_bytes() const;
   Offset bytes_for_factor() const;
 

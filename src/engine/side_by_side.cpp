@@ -66,7 +66,8 @@ Status CountRunner::work_all(std::vector<Task>& tasks) {
         stop = true;
         if (status.ok()) status = std::move(one);
       }
-      if (context_.progress) context_.progress("count", static_cast<double>(++done) / static_cast<double>(tasks.size()));
+      if (context_.progress)
+        context_.progress("count", static_cast<double>(++done) / static_cast<double>(tasks.size()));
     }
   };
   const int lanes = static_cast<int>(std::min<std::size_t>(static_cast<std::size_t>(lanes_), tasks.size()));

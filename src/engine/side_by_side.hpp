@@ -7,12 +7,12 @@
 
 namespace stanchion {
 
-/// Runs batches of counts. The answers do not depend on how many run at a time: each count has a number, and from that
-/// its random vectors and its share of the risk.
+/// Runs batches of counts. The answers do not depend on how many run at a time: each count has a number, and
+/// from that its random vectors and its share of the risk.
 class CountRunner {
  public:
-  /// As many lanes as the forecast of `counter`'s pencil allows, at most one a thread of the request. What an earlier
-  /// run left is taken from `context`'s journal. All references outlive the runner.
+  /// As many lanes as the forecast of `counter`'s pencil allows, at most one a thread of the request. What an
+  /// earlier run left is taken from `context`'s journal. All references outlive the runner.
   CountRunner(PencilCounter& counter, const RunContext& context, ThreadPool& pool, Outcome& outcome)
       : counter_(counter), context_(context), pool_(pool), outcome_(outcome) {}
 

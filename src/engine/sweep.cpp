@@ -10,7 +10,8 @@ namespace stanchion {
 namespace {
 
 constexpr int kMostRounds = 64;
-/// Stretches narrower than this part of the range are not split: what lies in them is one cluster to double precision.
+/// Stretches narrower than this part of the range are not split: what lies in them is one cluster to double
+/// precision.
 constexpr double kNarrowest = 0x1p-44;
 
 std::vector<double> grid(const SweepRequest& sweep) {
@@ -65,7 +66,8 @@ class Sweep {
     std::vector<double> middles;
     for (const Jump& jump : changes()) {
       const double span = jump.high - jump.low, size = std::max(std::fabs(jump.low), std::fabs(jump.high));
-      if (std::abs(jump.count) > 1 && span > sweep_.width * size && span > floor) middles.push_back(jump.low + span / 2);
+      if (std::abs(jump.count) > 1 && span > sweep_.width * size && span > floor)
+        middles.push_back(jump.low + span / 2);
     }
     return middles;
   }
@@ -87,8 +89,10 @@ class Sweep {
   void report(const Contradiction& pair) {
     char text[512];
     std::snprintf(text, sizeof(text),
-                  "the certified counts at %.10g and %.10g contradict each other: at least %d values by the one, at most %d "
-                  "by the other. One of the two certificates is wrong: a defect of the machine, its BLAS or the program. "
+                  "the certified counts at %.10g and %.10g contradict each other: at least %d values by the "
+                  "one, at most %d "
+                  "by the other. One of the two certificates is wrong: a defect of the machine, its BLAS or "
+                  "the program. "
                   "Both certificates are in the JSON document",
                   pair.shift, pair.other_shift, pair.least, pair.most);
     counter_.warn("counts-contradict", text);
@@ -102,8 +106,8 @@ class Sweep {
   std::vector<ShiftCount> counts_;
 };
 
-Result<Outcome> sweep_model(ModelInput model, const Request& request, const RunContext& context, ThreadPool& pool,
-                            Outcome outcome) {
+Result<Outcome> sweep_model(ModelInput model, const Request& request, const RunContext& context,
+                            ThreadPool& pool, Outcome outcome) {
   outcome.count.emplace();
   PencilCounter counter(request, context, pool, outcome);
   if (Status status = counter.prepare(std::move(model)); !status.ok()) return status;

@@ -50,7 +50,8 @@ Result<CertifiedInertia> by_relative_test(const Analysis& analysis, const Shifte
     found.unresolved_because = "the factorization broke down: entries overflow or no usable pivot is left";
     return found;
   }
-  auto test = certify_relative(analysis, unshifted, *factorization, *options.risk, options.seed, pool, options.second);
+  auto test = certify_relative(analysis, unshifted, *factorization, *options.risk, options.seed, pool,
+                               options.second);
   if (!test.ok()) return test.status();
   found.certify_seconds = test->seconds;
   found.certificate.failure_probability = test->failure_probability;
@@ -75,7 +76,8 @@ bool proof_is_cheap(const Analysis& analysis) {
 
 class Certifier {
  public:
-  Certifier(const Analysis& analysis, const ShiftedMatrix& matrix, const CertifyOptions& options, ThreadPool& pool)
+  Certifier(const Analysis& analysis, const ShiftedMatrix& matrix, const CertifyOptions& options,
+            ThreadPool& pool)
       : analysis_(analysis), matrix_(matrix), options_(options), pool_(pool) {}
 
   Result<CertifiedInertia> run() {

@@ -1,4 +1,5 @@
-// The certified inertia of one matrix by whichever method is forecast cheaper, escalating when one cannot tell.
+// The certified inertia of one matrix by whichever method is forecast cheaper, escalating when one cannot
+// tell.
 #pragma once
 
 #include "inertia/relative.hpp"
@@ -7,10 +8,10 @@
 namespace stanchion {
 
 struct CertifyOptions {
-  OffsetOptions offsets;            ///< resolution or data error given: offsets only
-  RiskBudget* risk = nullptr;       ///< of the document; null: no statistical statement is allowed
+  OffsetOptions offsets;       ///< resolution or data error given: offsets only
+  RiskBudget* risk = nullptr;  ///< of the document; null: no statistical statement is allowed
   std::uint64_t seed = 1;
-  Offset most_factor_bytes = 0;     ///< memory that keeping a factor may take
+  Offset most_factor_bytes = 0;           ///< memory that keeping a factor may take
   const ShiftedMatrix* second = nullptr;  ///< of the pencil: asks for the radius free of eigenvalues, too
 };
 
@@ -21,10 +22,11 @@ struct LikelyWork {
 };
 LikelyWork likely_work(const Analysis& analysis, const CertifyOptions& options);
 
-/// Definite expected: one factorization with an offset, without pivoting, is the cheapest proof. Otherwise the two
-/// offsets where their second factorization is cheap, else the relative test (one factorization, kept) where memory and
-/// risk allow; L is stored in single precision where only that fits. What leaves zero directions escalates to the other; the offsets have the last word, at a resolution.
-/// Errors: those of the methods.
+/// Definite expected: one factorization with an offset, without pivoting, is the cheapest proof. Otherwise
+/// the two offsets where their second factorization is cheap, else the relative test (one factorization,
+/// kept) where memory and risk allow; L is stored in single precision where only that fits. What leaves zero
+/// directions escalates to the other; the offsets have the last word, at a resolution. Errors: those of the
+/// methods.
 Result<CertifiedInertia> certify_inertia(const Analysis& analysis, const ShiftedMatrix& matrix,
                                          const CertifyOptions& options, ThreadPool& pool);
 

@@ -15,7 +15,7 @@ struct RelativeResult {
   Offset negative = 0, positive = 0;  ///< of J
   int power_steps = 0;                ///< applications of F
   double exclusion_radius =
-      0;  ///< with a second matrix B: A + t B is nonsingular for |t| below it; 0: not asked
+      0;                    ///< with a second matrix B: A + t B is nonsingular for |t| below it; 0: not asked
   double inverse_norm = 0;  ///< beta >= ||M^-1||, by the same events; 0 when nothing follows
   double seconds = 0;
   /// Parts of the bound of the first application, each over g: measured, evaluation of M^T y, evaluation of b

@@ -10,7 +10,8 @@
 namespace stanchion {
 namespace {
 
-/// First guesses of c over ||A_s||_inf: a few times the bounds usually seen, so that one factorization is enough.
+/// First guesses of c over ||A_s||_inf: a few times the bounds usually seen, so that one factorization is
+/// enough.
 constexpr double kDefiniteGuess = 0x1p-40, kGeneralGuess = 0x1p-32;
 constexpr double kExtendedDefiniteGuess = 0x1p-88, kExtendedGeneralGuess = 0x1p-84;
 /// A retry takes this many times the bound just reported: a changed offset moves the bound a little.
@@ -28,7 +29,8 @@ std::string rounded_up(double value) {
 
 class OffsetScheme {
  public:
-  OffsetScheme(const Analysis& analysis, const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool)
+  OffsetScheme(const Analysis& analysis, const ShiftedMatrix& matrix, const OffsetOptions& options,
+               ThreadPool& pool)
       : analysis_(analysis), matrix_(matrix), options_(options), pool_(pool), rows_(analysis.tree.rows) {}
 
   Result<CertifiedInertia> run() {
@@ -91,7 +93,8 @@ class OffsetScheme {
       found_.certificate.runs.push_back({offset, run.negative, run.bound});
       found_.certificate.error_bound = std::max(found_.certificate.error_bound.value_or(0), run.bound);
     }
-    if (keep && !run.stopped && !run.breakdown) options_.keep->emplace(KeptFactorization{offset, std::move(*result)});
+    if (keep && !run.stopped && !run.breakdown)
+      options_.keep->emplace(KeptFactorization{offset, std::move(*result)});
     return run;
   }
 
@@ -122,7 +125,8 @@ class OffsetScheme {
       for (const double s : *matrix_.scale) largest_scale = std::max(largest_scale, s);
       // Rounded down: the subtraction and the square may each round up.
       found_.certificate.smallest_eigenvalue_above = above * (1 - 0x1p-50);
-      found_.certificate.smallest_eigenvalue_of_k_above = above / (largest_scale * largest_scale) * (1 - 0x1p-50);
+      found_.certificate.smallest_eigenvalue_of_k_above =
+          above / (largest_scale * largest_scale) * (1 - 0x1p-50);
     }
   }
 
@@ -149,7 +153,8 @@ class OffsetScheme {
       if (!above.ok()) return above.status();
       const double bound = std::max(below->bound, above->bound);
       if (below->breakdown || above->breakdown) {
-        if (!have_answer) give_up("the factorization broke down: entries overflow or no usable pivot is left");
+        if (!have_answer)
+          give_up("the factorization broke down: entries overflow or no usable pivot is left");
         return found_;
       }
       if (offset <= bound) {
@@ -169,7 +174,8 @@ class OffsetScheme {
       }
       settle(rows_ - below->negative, above->negative, offset, below->bound);
       have_answer = true;
-      const bool worth_sharpening = options_.sharpen && found_.inertia.zero > 0 && !options_.resolution && offset > kSharpenAbove * bound;
+      const bool worth_sharpening = options_.sharpen && found_.inertia.zero > 0 && !options_.resolution &&
+                                    offset > kSharpenAbove * bound;
       if (!worth_sharpening) return found_;
       offset = kMargin * bound;
     }
@@ -195,7 +201,8 @@ Result<CertifiedInertia> certify_by_offsets(const Analysis& analysis, const Shif
 Verdict verdict_of(const Inertia& inertia, Level level) {
   if (level == Level::kNone || inertia.undecided > 0) return Verdict::kUnresolved;
   if (inertia.negative > 0 && inertia.positive > 0) return Verdict::kIndefinite;
-  if (inertia.zero == 0) return inertia.negative > 0 ? Verdict::kNegativeDefinite : Verdict::kPositiveDefinite;
+  if (inertia.zero == 0)
+    return inertia.negative > 0 ? Verdict::kNegativeDefinite : Verdict::kPositiveDefinite;
   return inertia.negative > 0 ? Verdict::kNegativeSemidefinite : Verdict::kPositiveSemidefinite;
 }
 

@@ -23,7 +23,7 @@ struct OffsetOptions {
   double data_error = 0;             ///< bound on the 2-norm of what the scaled entries themselves may be off
   bool sharpen = true;               ///< where zeros are left, try again with a smaller offset
   std::optional<KeptFactorization>* keep = nullptr;  ///< takes the last factorization at a positive offset
-  FactorOptions factor;              ///< threshold, cap, progress, cancellation; `definite` is set here
+  FactorOptions factor;  ///< threshold, cap, progress, cancellation; `definite` is set here
 };
 
 /// An inertia with its backing and what it cost.
@@ -33,19 +33,21 @@ struct CertifiedInertia {
   std::string unresolved_because;  ///< empty when certificate.level is proved
   Index factorizations = 0;
   Offset delayed_pivots = 0, two_by_two_pivots = 0, peak_bytes = 0;
-  double exclusion_radius = 0;  ///< relative test with a second matrix B: A + t B is nonsingular for |t| below; or 0
-  double seconds = 0;          ///< of the factorizations
+  double exclusion_radius =
+      0;               ///< relative test with a second matrix B: A + t B is nonsingular for |t| below; or 0
+  double seconds = 0;  ///< of the factorizations
   double certify_seconds = 0;  ///< beyond them
 };
 
-/// Counts at both offsets and what follows: with bounds eta-, eta+ on the two backward errors and c above both,
-/// at least m = n-(A_s + cI) eigenvalues are negative, at least n - k with k = n-(A_s - cI) are positive, the
-/// k - m between are zero at the resolution c (of either sign). k = 0 proves positive definiteness from one
-/// factorization, with lambda_min(A_s) >= c - eta-. Derivation: error_bound.md. The offset of `matrix` is ignored.
-/// Without `resolution` c follows the bounds, so that an answer exists unless the factorization breaks down; the
-/// zeros then say what the precision used could not tell apart. Level: proved, or none with the reason.
-/// Errors: those of factorize(); internal when the counts contradict the bounds (a fault of machine or program).
-/// Cost: one factorization in the good definite case, otherwise two to six.
+/// Counts at both offsets and what follows: with bounds eta-, eta+ on the two backward errors and c above
+/// both, at least m = n-(A_s + cI) eigenvalues are negative, at least n - k with k = n-(A_s - cI) are
+/// positive, the k - m between are zero at the resolution c (of either sign). k = 0 proves positive
+/// definiteness from one factorization, with lambda_min(A_s) >= c - eta-. Derivation: error_bound.md. The
+/// offset of `matrix` is ignored. Without `resolution` c follows the bounds, so that an answer exists unless
+/// the factorization breaks down; the zeros then say what the precision used could not tell apart. Level:
+/// proved, or none with the reason. Errors: those of factorize(); internal when the counts contradict the
+/// bounds (a fault of machine or program). Cost: one factorization in the good definite case, otherwise two
+/// to six.
 Result<CertifiedInertia> certify_by_offsets(const Analysis& analysis, const ShiftedMatrix& matrix,
                                             const OffsetOptions& options, ThreadPool& pool);
 

@@ -65,8 +65,10 @@ DotResult dot(const std::vector<double>& x, const std::vector<double>& b, std::s
 
 }  // namespace
 
-std::optional<NegativeDirection> find_negative_direction(const Analysis& analysis, const ShiftedMatrix& matrix,
-                                                         const Factorization& factorization, ThreadPool& pool) {
+std::optional<NegativeDirection> find_negative_direction(const Analysis& analysis,
+                                                         const ShiftedMatrix& matrix,
+                                                         const Factorization& factorization,
+                                                         ThreadPool& pool) {
   const Factor& factor = *factorization.factor;
   const auto rows = static_cast<std::size_t>(factor.rows);
   const std::vector<Candidate> candidates = most_negative_pivots(factor);
@@ -103,7 +105,8 @@ std::optional<NegativeDirection> find_negative_direction(const Analysis& analysi
     best->error_bound = error;
     best->x.resize(rows);
     // x^T (S A S) x = (S x)^T A (S x), and S x is exact.
-    for (std::size_t i = 0; i < rows; ++i) best->x[i] = x[i * kV + v] * (*matrix.scale)[static_cast<Offset>(i)];
+    for (std::size_t i = 0; i < rows; ++i)
+      best->x[i] = x[i * kV + v] * (*matrix.scale)[static_cast<Offset>(i)];
   }
   return best;
 }

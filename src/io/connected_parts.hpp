@@ -10,8 +10,8 @@ namespace stanchion {
 
 struct ConnectedParts {
   Index count = 0;
-  std::vector<Index> first_rows;  ///< of the first few parts, ascending
-  std::vector<Index> sizes;       ///< rows of each of those
+  std::vector<Index> first_rows;   ///< of the first few parts, ascending
+  std::vector<Index> sizes;        ///< rows of each of those
   std::vector<Index> part_of_row;  ///< number of every row's part, -1 for rows alone
 };
 

@@ -32,8 +32,9 @@ Detected by_fields(std::string_view text) {
     // Read as triplets, the size line of a Matrix Market file would be an entry.
     if (lower_case(content.substr(0, kHeaderSearched)).find("matrixmarket") != std::string::npos) {
       return unknown("bad-header",
-                     "the line \"" + excerpt(content) + "\" looks like the header of a Matrix Market file, which must "
-                     "be the first line and begin with %%MatrixMarket",
+                     "the line \"" + excerpt(content) +
+                         "\" looks like the header of a Matrix Market file, which must "
+                         "be the first line and begin with %%MatrixMarket",
                      "start the file with: %%MatrixMarket matrix coordinate real symmetric", walker.number());
     }
     if (content.empty() || content.front() == '%' || content.front() == '#') continue;

@@ -167,15 +167,18 @@ class Inspector {
       if (coupled_[at] != 0 || diagonal_[at] <= 0 || diagonal_[at] == 1) continue;
       if (stamped_[diagonal_[at]] > 1) same.add(row);
     }
-    report("stamped-rows", same, "row holds nothing but a diagonal entry", "rows hold nothing but a diagonal entry that "
-           "others repeat", "Held dofs are sometimes written so; each counts as one positive eigenvalue. Strike them out "
+    report("stamped-rows", same, "row holds nothing but a diagonal entry",
+           "rows hold nothing but a diagonal entry that "
+           "others repeat",
+           "Held dofs are sometimes written so; each counts as one positive eigenvalue. Strike them out "
            "with --fix");
     std::vector<double> beside(diagonal_.size(), 0.0);
     for (Index column = 0; column < matrix_.rows; ++column) {
       for (Offset k = matrix_.column_start[column]; k < matrix_.column_start[Offset{column} + 1]; ++k) {
         const Index row = matrix_.row[k];
         if (row == column || matrix_.value[k] == 0) continue;
-        double &own = beside[static_cast<std::size_t>(column)], &other = beside[static_cast<std::size_t>(row)];
+        double &own = beside[static_cast<std::size_t>(column)],
+               &other = beside[static_cast<std::size_t>(row)];
         own = std::max(own, diagonal_[static_cast<std::size_t>(row)]);
         other = std::max(other, diagonal_[static_cast<std::size_t>(column)]);
       }
@@ -185,21 +188,25 @@ class Inspector {
       const auto at = static_cast<std::size_t>(row);
       if (beside[at] > 0 && diagonal_[at] > kPenalty * beside[at]) penalties.add(row);
     }
-    report("penalty-rows", penalties, "row has a diagonal entry a thousand million times those it is coupled with",
+    report("penalty-rows", penalties,
+           "row has a diagonal entry a thousand million times those it is coupled with",
            "rows have diagonal entries a thousand million times those they are coupled with",
-           "A dof held or tied by a penalty? It costs digits: strike it out (--fix) or use a constraint equation");
+           "A dof held or tied by a penalty? It costs digits: strike it out (--fix) or use a constraint "
+           "equation");
   }
 
   /// Most of a stiffness matrix's diagonal is positive, whatever the structure.
   void report_sign() {
     const PreflightFacts& facts = result_.facts;
-    if (subject_.role != MatrixRole::kStiffness || facts.negative_diagonals <= facts.positive_diagonals) return;
-    result_.warnings.push_back({"sign-of-stiffness",
-                                "more diagonal entries are negative (" + std::to_string(facts.negative_diagonals) +
-                                    ") than positive (" + std::to_string(facts.positive_diagonals) +
-                                    "). Written with the other sign, or a geometric stiffness in place of K? Check which "
-                                    "file was given, and its sign",
-                                subject_.path});
+    if (subject_.role != MatrixRole::kStiffness || facts.negative_diagonals <= facts.positive_diagonals)
+      return;
+    result_.warnings.push_back(
+        {"sign-of-stiffness",
+         "more diagonal entries are negative (" + std::to_string(facts.negative_diagonals) +
+             ") than positive (" + std::to_string(facts.positive_diagonals) +
+             "). Written with the other sign, or a geometric stiffness in place of K? Check which "
+             "file was given, and its sign",
+         subject_.path});
   }
 
   void report_spread() {
@@ -266,11 +273,12 @@ class Inspector {
       const auto at = std::find(parts.part_of_row.begin(), parts.part_of_row.end(), static_cast<Index>(part));
       return static_cast<Index>(at - parts.part_of_row.begin());
     };
-    result_.warnings.push_back({"units-by-part",
-                                "the part from " + name(first_of(soft)) + " has diagonal entries about " + number_text(least) +
-                                    ", the part from " + name(first_of(stiff)) + " about " + number_text(most) +
-                                    ". Parts written in different units? Check them before they are tied together",
-                                at_row(subject_.path, number(first_of(soft)))});
+    result_.warnings.push_back(
+        {"units-by-part",
+         "the part from " + name(first_of(soft)) + " has diagonal entries about " + number_text(least) +
+             ", the part from " + name(first_of(stiff)) + " about " + number_text(most) +
+             ". Parts written in different units? Check them before they are tied together",
+         at_row(subject_.path, number(first_of(soft)))});
   }
 
   const PreflightSubject& subject_;

@@ -28,7 +28,7 @@ struct PreflightFacts {
   double least_diagonal = 0, greatest_diagonal = 0;  ///< of the positive ones; 0 when there are none
   Index parts = 0;                                   ///< connected parts, without empty and identity rows
   Offset positive_diagonals = 0;
-  double median_diagonal = 0;                        ///< of the absolute values that are not zero
+  double median_diagonal = 0;  ///< of the absolute values that are not zero
 };
 
 struct Preflight {
@@ -43,9 +43,11 @@ struct Preflight {
 /// With `dofs` the dofs of one node count as connected.
 Result<Preflight> preflight(const PreflightSubject& subject);
 
-/// What two matrices say together: "swapped-matrices", "sign-of-geometric". `minus`: G was written for K - f G.
-Warnings compare_matrices(const PreflightFacts& stiffness, const std::string& stiffness_path, const PreflightFacts& second,
-                          const std::string& second_path, MatrixRole role, bool minus);
+/// What two matrices say together: "swapped-matrices", "sign-of-geometric". `minus`: G was written for K - f
+/// G.
+Warnings compare_matrices(const PreflightFacts& stiffness, const std::string& stiffness_path,
+                          const PreflightFacts& second, const std::string& second_path, MatrixRole role,
+                          bool minus);
 
 /// kBadInput "dof-map-size" unless the map has exactly one line an equation.
 Status check_dof_map_size(const DofMap& dofs, const std::string& dofs_path, const SymmetricMatrix& matrix,

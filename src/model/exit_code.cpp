@@ -30,8 +30,9 @@ ExitCode code_of_check(const CheckOutcome& check) {
 ExitCode code_of_location(const Outcome& outcome) {
   if (!outcome.located || code_of_check(*outcome.check) == kExitUnresolved) return kExitUnresolved;
   const auto& directions = outcome.located->directions;
-  const bool open = std::any_of(directions.begin(), directions.end(),
-                                [](const Direction& direction) { return direction.cause == Cause::kUnresolved; });
+  const bool open = std::any_of(directions.begin(), directions.end(), [](const Direction& direction) {
+    return direction.cause == Cause::kUnresolved;
+  });
   if (open) return kExitUnresolved;
   return directions.empty() && outcome.located->not_located == 0 ? kExitGood : kExitNotGood;
 }
@@ -101,8 +102,10 @@ ExitCode exit_code(const Outcome& outcome, const Judgement& judgement) {
     if (outcome.count) return from_comparison(compare(*judgement.expectation, *outcome.count));
   }
   ExitCode code = kExitGood;
-  if (outcome.check) code = outcome.command == "locate" ? code_of_location(outcome) : code_of_check(*outcome.check);
-  if (outcome.count) code = outcome.sweep ? code_of_sweep(*outcome.count, *outcome.sweep) : code_of_count(*outcome.count);
+  if (outcome.check)
+    code = outcome.command == "locate" ? code_of_location(outcome) : code_of_check(*outcome.check);
+  if (outcome.count)
+    code = outcome.sweep ? code_of_sweep(*outcome.count, *outcome.sweep) : code_of_count(*outcome.count);
   if (outcome.bracket) code = code_of_bracket(*outcome.bracket);
   if (outcome.audit) code = code_of_audit(*outcome.audit);
   if (outcome.path) code = code_of_path(*outcome.path);

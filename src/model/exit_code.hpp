@@ -27,10 +27,11 @@ struct Judgement {
   std::optional<Expectation> expectation;
 };
 
-/// A sweep whose certified counts contradict each other is a defect (5), whatever is expected. audit: good only when
-/// complete. check on a load path: good only when every step is.
-/// check: good only when positive definite (or as expected). count, forecast: good when all is answered (or
-/// as expected). locate: good when no cause is found; unresolved when a direction's sign or membership is. Unresolved as soon as an asked statement has no certificate.
+/// A sweep whose certified counts contradict each other is a defect (5), whatever is expected. audit: good
+/// only when complete. check on a load path: good only when every step is. check: good only when positive
+/// definite (or as expected). count, forecast: good when all is answered (or as expected). locate: good when
+/// no cause is found; unresolved when a direction's sign or membership is. Unresolved as soon as an asked
+/// statement has no certificate.
 ExitCode exit_code(const Outcome& outcome, const Judgement& judgement);
 
 }  // namespace stanchion

@@ -83,7 +83,8 @@ Status check_applicable(const Expectation& expectation, Question question) {
       return refuse("locate tells what it finds, and its exit code whether",
                     "leave --expect out, or use it with check --locate");
     case Question::kForecast:
-      return refuse("a forecast gives no verdict to compare", "leave --expect out, or use it with check or count");
+      return refuse("a forecast gives no verdict to compare",
+                    "leave --expect out, or use it with check or count");
     case Question::kBracket:
       if (kind == Kind::kNoneBelow) return {};
       return refuse("brackets can only be expected to hold no value", "write --expect none-below");
@@ -100,7 +101,8 @@ Status check_applicable(const Expectation& expectation, Question question) {
     case Question::kCheck:
       break;
   }
-  if (kind == Kind::kNoneBelow) return refuse("this is an expectation of brackets", "use it with bracket --below B");
+  if (kind == Kind::kNoneBelow)
+    return refuse("this is an expectation of brackets", "use it with bracket --below B");
   if (kind == Kind::kComplete) return refuse("this is an expectation of an audit", "use it with audit");
   return {};
 }

@@ -22,7 +22,8 @@ struct Expectation {
   Index count = 0;
 };
 
-/// "positive-definite", "zero:6", "negative:2", "none-below", "complete". Error: bad usage ("bad-expectation").
+/// "positive-definite", "zero:6", "negative:2", "none-below", "complete". Error: bad usage
+/// ("bad-expectation").
 Result<Expectation> parse_expectation(std::string_view text);
 
 /// Bad usage ("expectation-not-applicable") when the question cannot meet the expectation at all.

@@ -35,7 +35,8 @@ constexpr const char* kOutside =
 constexpr const char* kPractice =
     "Adequacy: the verdict defers to licensed practice and to the codes in force where the structure stands.";
 constexpr const char* kBetweenSteps =
-    "What happens between two steps of the load path: a direction that turns negative and back again between two of the "
+    "What happens between two steps of the load path: a direction that turns negative and back again between "
+    "two of the "
     "matrices is not seen, nor is a snap to another path.";
 constexpr const char* kListedShapes =
     "Mode shapes that belong to the list: only the numbers were audited, and only those in the range.";
@@ -46,7 +47,8 @@ constexpr const char* kForecastOnly =
 }  // namespace
 
 constexpr const char* kCauses =
-    "Causes: they are read from shapes and entries of the matrix alone. Whether the remedy named fits the structure is "
+    "Causes: they are read from shapes and entries of the matrix alone. Whether the remedy named fits the "
+    "structure is "
     "for its engineer to say.";
 
 std::vector<std::string> not_checked(const Request& request, Question question) {

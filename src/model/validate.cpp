@@ -92,7 +92,8 @@ Status validate_sweep(const SweepRequest& sweep) {
                         "give two numbers, the smaller one first, e.g. --from 0.5 --to 2");
   }
   if (sweep.points < 2 || sweep.points > kMostPoints) {
-    return out_of_range("--points", fmt::format("{} points are not between 2 and {}", sweep.points, kMostPoints),
+    return out_of_range("--points",
+                        fmt::format("{} points are not between 2 and {}", sweep.points, kMostPoints),
                         "both ends are points; e.g. --points 11");
   }
   if (sweep.geometric && !(sweep.from * sweep.to > 0)) {
@@ -110,13 +111,15 @@ Status validate_sweep(const SweepRequest& sweep) {
 Status validate_unit(const Request& request, ValueUnit unit, const char* option) {
   const bool mass = request.pencil == Pencil::kMass;
   if (mass == (unit != ValueUnit::kFactor)) return {};
-  return contradiction(option, mass ? "values of K - s M are omega^2 or hertz" : "only frequencies have such a unit",
-                       mass ? "write --unit omega2 or --unit hertz" : "leave --unit out, or name the mass with --mass");
+  return contradiction(
+      option, mass ? "values of K - s M are omega^2 or hertz" : "only frequencies have such a unit",
+      mass ? "write --unit omega2 or --unit hertz" : "leave --unit out, or name the mass with --mass");
 }
 
 Status validate_range(const std::optional<double>& from, const std::optional<double>& to) {
   for (const auto& end : {from, to}) {
-    if (end && !std::isfinite(*end)) return out_of_range("--from, --to", "the ends must be finite", "give two numbers");
+    if (end && !std::isfinite(*end))
+      return out_of_range("--from, --to", "the ends must be finite", "give two numbers");
   }
   if (from && to && !(*from < *to)) {
     return out_of_range("--from, --to", fmt::format("from {} to {} is no range", *from, *to),
@@ -172,12 +175,13 @@ Status validate_audit(const Request& request) {
 
 Status validate_load_path(const Request& request) {
   if (request.steps.empty()) return {};
-  const char* what = request.want_witness    ? "--witness"
-                     : request.want_location ? "--locate"
+  const char* what = request.want_witness        ? "--witness"
+                     : request.want_location     ? "--locate"
                      : request.input.multipliers ? "--multipliers"
                                                  : nullptr;
   if (what == nullptr) return {};
-  return contradiction(what, "this belongs to one matrix, not to a load path", "ask it of the step that you want to know about");
+  return contradiction(what, "this belongs to one matrix, not to a load path",
+                       "ask it of the step that you want to know about");
 }
 
 Status validate_question(const Request& request, Question question) {
@@ -227,10 +231,11 @@ Status validate_numbers(const Request& request) {
     return out_of_range("--weak-below", fmt::format("{} is no energy ratio from 0 to 1", locate.weak_below),
                         "give the ratio below which a direction counts as weak, e.g. --weak-below 1e-7");
   }
-  if (!(locate.attention_digits > 0 && locate.attention_digits < locate.alarm_digits && locate.alarm_digits <= 16)) {
+  if (!(locate.attention_digits > 0 && locate.attention_digits < locate.alarm_digits &&
+        locate.alarm_digits <= 16)) {
     return out_of_range("--attention-digits, --alarm-digits",
-                        fmt::format("{} and {} are no two rising numbers of digits up to 16", locate.attention_digits,
-                                    locate.alarm_digits),
+                        fmt::format("{} and {} are no two rising numbers of digits up to 16",
+                                    locate.attention_digits, locate.alarm_digits),
                         "leave them out for 8 and 12");
   }
   if (request.memory_cap_bytes && *request.memory_cap_bytes < 1) {

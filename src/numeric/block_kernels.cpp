@@ -21,6 +21,8 @@ const BlockKernels& block_kernels() {
   return isa == "AVX2" ? isa_avx2::block_table : isa_generic::block_table;
 }
 
-const BlockKernels& reference_block_kernels() { return isa_generic::block_table; }
+const BlockKernels& reference_block_kernels() {
+  return isa_generic::block_table;
+}
 
 }  // namespace stanchion

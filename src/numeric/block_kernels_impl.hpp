@@ -13,7 +13,9 @@ inline Lanes load(const double* p) {
   __builtin_memcpy(&v, p, sizeof(v));
   return v;
 }
-inline void store(double* p, Lanes v) { __builtin_memcpy(p, &v, sizeof(v)); }
+inline void store(double* p, Lanes v) {
+  __builtin_memcpy(p, &v, sizeof(v));
+}
 
 /// a * b - c rounded once, lane by lane.
 inline Lanes fused_minus(Lanes a, Lanes b, Lanes c) {
@@ -48,7 +50,8 @@ void add_four_columns(const Scalar* lower, Index leading, Index rows, const doub
 }
 
 template <class Scalar>
-void panel_times_block(const Scalar* lower, Index leading, Index rows, Index columns, const double* x, double* y) {
+void panel_times_block(const Scalar* lower, Index leading, Index rows, Index columns, const double* x,
+                       double* y) {
   Lanes sum[kPanelRows];
   for (Index begin = 0; begin < rows; begin += kPanelRows) {
     const Index count = rows - begin < kPanelRows ? rows - begin : kPanelRows;
@@ -68,8 +71,8 @@ void panel_times_block(const Scalar* lower, Index leading, Index rows, Index col
 }
 
 template <class Scalar>
-void panel_transposed_times_block(const Scalar* lower, Index leading, Index rows, Index columns, const double* x,
-                                  double* out) {
+void panel_transposed_times_block(const Scalar* lower, Index leading, Index rows, Index columns,
+                                  const double* x, double* out) {
   Index k = 0;
   for (; k + 4 <= columns; k += 4) {
     const Scalar* l0 = lower + static_cast<long>(k) * leading;
@@ -141,7 +144,8 @@ inline void accumulate(LanePair& total, Pair a, Lanes y) {
   total.high = high;
 }
 
-void extended_product(const DataColumns& data, Index begin, Index end, const double* y, double* high, double* low) {
+void extended_product(const DataColumns& data, Index begin, Index end, const double* y, double* high,
+                      double* low) {
   const bool plain = data.members == 1 && data.coefficients[0] == 1;
   for (Index j = begin; j < end; ++j) {
     const long at_j = 8 * static_cast<long>(j);

@@ -7,8 +7,8 @@
 
 namespace stanchion {
 
-/// Passes over a kept factor. Blocks hold kBlockVectors doubles a row, rows in elimination order. The results have
-/// the same bits for any number of threads. One object serves one caller at a time.
+/// Passes over a kept factor. Blocks hold kBlockVectors doubles a row, rows in elimination order. The results
+/// have the same bits for any number of threads. One object serves one caller at a time.
 class BlockSolver {
  public:
   /// `analysis` and `factor` belong together and outlive the solver. Cost: one pass over the row lists.
@@ -35,7 +35,8 @@ class BlockSolver {
   const Factor& factor_;
   ThreadPool& pool_;
   std::vector<std::vector<Index>> children_;
-  std::vector<std::vector<double>> passed_up_;  ///< per front, its sums for rows below, until its parent takes them
+  std::vector<std::vector<double>>
+      passed_up_;  ///< per front, its sums for rows below, until its parent takes them
   Index longest_path_ = 0;
 };
 

@@ -17,7 +17,8 @@ std::array<Index, kRanges + 1> equal_ranges(const MatrixFamily& family) {
   for (Index r = 1; r < kRanges; ++r) {
     const Offset target = family.entries() / kRanges * r;
     const Offset* at = std::lower_bound(family.column_start.begin(), family.column_start.end(), target);
-    ends[static_cast<std::size_t>(r)] = std::min(static_cast<Index>(at - family.column_start.begin()), family.rows);
+    ends[static_cast<std::size_t>(r)] =
+        std::min(static_cast<Index>(at - family.column_start.begin()), family.rows);
   }
   ends[kRanges] = family.rows;
   return ends;
@@ -42,15 +43,16 @@ void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, Thr
   for (std::size_t k = 0; k < size; ++k) scaled[k] = y[k] * (*matrix.scale)[static_cast<Offset>(k / kV)];
   std::vector<const double*> members;
   for (const Buffer<double>& values : family.values) members.push_back(values.data());
-  const DataColumns data{family.column_start.data(), family.row.data(), members.data(), matrix.coefficients.data(),
-                         static_cast<Index>(members.size())};
+  const DataColumns data{family.column_start.data(), family.row.data(), members.data(),
+                         matrix.coefficients.data(), static_cast<Index>(members.size())};
   std::array<std::vector<double>, kRanges> high, low;
   const std::array<Index, kRanges + 1> ends = equal_ranges(family);
   pool.run(kRanges, [&](Offset range, int) {
     const auto r = static_cast<std::size_t>(range);
     high[r].assign(size, 0.0);
     low[r].assign(size, 0.0);
-    block_kernels().extended_product(data, ends[r], ends[r + 1], scaled.data(), high[r].data(), low[r].data());
+    block_kernels().extended_product(data, ends[r], ends[r + 1], scaled.data(), high[r].data(),
+                                     low[r].data());
   });
   for (std::size_t k = 0; k < size; ++k) {
     const double scale = (*matrix.scale)[static_cast<Offset>(k / kV)];

@@ -26,8 +26,8 @@ struct FactorOptions {
   std::uint64_t seed = 1;  ///< of the signs that detect faults; the factors do not depend on it
 };
 
-/// One eliminated front: L (order x pivots, column-major, unit lower trapezoid), D, and the equations by position.
-/// L is held in one of two precisions; the other buffer is empty.
+/// One eliminated front: L (order x pivots, column-major, unit lower trapezoid), D, and the equations by
+/// position. L is held in one of two precisions; the other buffer is empty.
 struct FactorFront {
   Index pivots = 0, order = 0;
   Buffer<double> lower;
@@ -65,15 +65,16 @@ struct PivotSigns {
 };
 
 struct Factorization {
-  bool stopped = false;     ///< definite attempt met a pivot that is not positive; counts are not valid
-  bool breakdown = false;   ///< overflow or pivots too small to divide by; counts are not valid
-  bool fault = false;       ///< the machine, its memory or its BLAS computed wrongly; nothing is valid
-  Index fault_row = -1;     ///< the first row, in elimination order, that differs from A x by more than its bound
+  bool stopped = false;    ///< definite attempt met a pivot that is not positive; counts are not valid
+  bool breakdown = false;  ///< overflow or pivots too small to divide by; counts are not valid
+  bool fault = false;      ///< the machine, its memory or its BLAS computed wrongly; nothing is valid
+  Index fault_row =
+      -1;  ///< the first row, in elimination order, that differs from A x by more than its bound
   PivotSigns signs;
   std::vector<PivotSigns> component_signs;  ///< per connected part
-  double error_bound = 0;   ///< proved: ||E||_2, forming of the matrix included
+  double error_bound = 0;                   ///< proved: ||E||_2, forming of the matrix included
   Offset delayed_pivots = 0, two_by_two_pivots = 0;
-  Offset peak_bytes = 0;    ///< of the numeric phase, as allocated
+  Offset peak_bytes = 0;  ///< of the numeric phase, as allocated
   double seconds = 0;
   std::optional<Factor> factor;
 
@@ -97,17 +98,18 @@ struct Factorization {
 };
 
 /// Factors `matrix` (in the elimination order of `analysis`). All threads of `pool` are used; the bits of the
-/// result do not depend on their number. Errors: interrupted; resource limit "memory-cap" with the figure reached,
-/// or "out-of-memory". Cost and memory: see Analysis::forecast. `pool` must not be in use.
-Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
-                                ThreadPool& pool);
+/// result do not depend on their number. Errors: interrupted; resource limit "memory-cap" with the figure
+/// reached, or "out-of-memory". Cost and memory: see Analysis::forecast. `pool` must not be in use.
+Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix,
+                                const FactorOptions& options, ThreadPool& pool);
 
-/// Ok, or internal "machine-fault" naming the equation when the factorization found that the machine computed wrongly:
-/// no answer may then be given. Whoever uses a Factorization asks this first.
+/// Ok, or internal "machine-fault" naming the equation when the factorization found that the machine computed
+/// wrongly: no answer may then be given. Whoever uses a Factorization asks this first.
 Status check_fault(const Analysis& analysis, const Factorization& factorization);
 
-/// x = A^-1 b by the factor, for `columns` right-hand sides stored one after the other (each factor.rows long, in
-/// elimination order), in place. Zero pivots are an error "singular"; L must be in double. Cost: 4 entries of L a column.
+/// x = A^-1 b by the factor, for `columns` right-hand sides stored one after the other (each factor.rows
+/// long, in elimination order), in place. Zero pivots are an error "singular"; L must be in double. Cost: 4
+/// entries of L a column.
 Status solve(const Factor& factor, double* x, Index columns);
 
 /// Solves and refines: x with A x = b until the residual stops falling or `most_steps`. Returns the largest

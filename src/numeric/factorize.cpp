@@ -83,7 +83,8 @@ class Factorizer {
     if (!run_.options.progress) return;
     std::unique_lock lock(progress_mutex_, std::try_to_lock);
     if (lock.owns_lock()) {
-      run_.options.progress("factor", std::min(1.0, done / std::max(1.0, run_.analysis.forecast.front_flops)));
+      run_.options.progress("factor",
+                            std::min(1.0, done / std::max(1.0, run_.analysis.forecast.front_flops)));
     }
   }
 
@@ -106,8 +107,8 @@ class Factorizer {
     }
   }
 
-  /// The subtrees of one wave, the largest first, each on whichever worker is free; who finds none left takes part in
-  /// the larger fronts of the others.
+  /// The subtrees of one wave, the largest first, each on whichever worker is free; who finds none left takes
+  /// part in the larger fronts of the others.
   void run_subtrees(const Wave& wave) {
     const Schedule& schedule = run_.analysis.schedule;
     std::vector<std::size_t> by_size(wave.end_subtree - wave.first_subtree);
@@ -121,13 +122,15 @@ class Factorizer {
       const Subtree& subtree = schedule.subtrees[by_size[static_cast<std::size_t>(piece)]];
       if (!mine && !start(mine, schedule.worker_arena_doubles)) return;
       for (Index f = subtree.first; f < subtree.end; ++f) {
-        const bool large = front_flops(run_.analysis.tree.order(f), run_.analysis.tree.pivots(f)) > kShareFlops;
+        const bool large =
+            front_flops(run_.analysis.tree.order(f), run_.analysis.tree.pivots(f)) > kShareFlops;
         if (!step(*mine, f, large ? &pool_ : nullptr)) return;
       }
       try {
         if (Status status = mine->detach(subtree.end - 1); !status.ok()) fail(std::move(status));
       } catch (const std::bad_alloc&) {
-        fail(Status::resource_limit("out-of-memory", "no memory for a contribution block", "", "free memory"));
+        fail(
+            Status::resource_limit("out-of-memory", "no memory for a contribution block", "", "free memory"));
       }
     });
   }
@@ -163,14 +166,16 @@ Status check_fault(const Analysis& analysis, const Factorization& factorization)
   if (!factorization.fault) return {};
   const Index equation = analysis.tree.equation_at[factorization.fault_row];
   return {StatusKind::kInternal, "machine-fault",
-          "the factors do not reproduce the matrix within their proved error bound: a fault of the machine, its memory "
-          "or its BLAS (" + blas_description() + "); no answer is given",
+          "the factors do not reproduce the matrix within their proved error bound: a fault of the machine, "
+          "its memory "
+          "or its BLAS (" +
+              blas_description() + "); no answer is given",
           "equation " + std::to_string(Offset{equation} + 1),
           "run `stanchion selftest`; then try again with another BLAS or on another machine"};
 }
 
-Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
-                                ThreadPool& pool) {
+Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix,
+                                const FactorOptions& options, ThreadPool& pool) {
   use_single_threaded_blas();
   try {
     return Factorizer(analysis, matrix, options, pool).run();

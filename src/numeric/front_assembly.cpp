@@ -11,10 +11,10 @@ namespace {
 constexpr double kUnit = 0x1p-53;
 constexpr Index kScatterColumns = 64;  ///< columns of a contribution block added as one piece
 
-/// Adds columns [begin, end) of the child to the front through `map` (child row -> front row). `run_end[i]`: end of the
-/// rows from i on that stay next to each other.
-void scatter_columns(const Contribution& child, const Index* map, const Index* run_end, const BlockLower& front,
-                     Index begin, Index end) {
+/// Adds columns [begin, end) of the child to the front through `map` (child row -> front row). `run_end[i]`:
+/// end of the rows from i on that stay next to each other.
+void scatter_columns(const Contribution& child, const Index* map, const Index* run_end,
+                     const BlockLower& front, Index begin, Index end) {
   const BlockLower from{contribution_layout(child.order), child.values};
   const bool ascending = child.delayed.empty();
   for (Index j = begin; j < end; ++j) {
@@ -28,7 +28,8 @@ void scatter_columns(const Contribution& child, const Index* map, const Index* r
         for (; i < stop; ++i) target[i] += source[i];
       }
     } else {
-      for (Index i = j; i < child.order; ++i) front.at(std::max(map[i], to), std::min(map[i], to)) += source[i];
+      for (Index i = j; i < child.order; ++i)
+        front.at(std::max(map[i], to), std::min(map[i], to)) += source[i];
     }
   }
 }
@@ -81,7 +82,8 @@ void FrontWorker::add_contribution(const Contribution& child, const BlockLower& 
   const Index pieces = (child.order + kScatterColumns - 1) / kScatterColumns;
   for_each_piece(team, pieces, [&](Offset piece) {
     const Index begin = static_cast<Index>(piece) * kScatterColumns;
-    scatter_columns(child, map_.data(), run_end_.data(), matrix, begin, std::min(begin + kScatterColumns, child.order));
+    scatter_columns(child, map_.data(), run_end_.data(), matrix, begin,
+                    std::min(begin + kScatterColumns, child.order));
   });
 }
 
@@ -107,7 +109,8 @@ Status FrontWorker::assemble(const FrontRows& rows, const BlockLower& matrix, Th
     add_contribution(run_.waiting[static_cast<std::size_t>(child)], matrix, team);
   }
   // Every addition to a row rounds a partial sum that is at most the sum of the addends' sizes.
-  for (std::size_t i = 0; i < order; ++i) row_error_[i] += kUnit * static_cast<double>(addends_[i]) * addend_sums_[i];
+  for (std::size_t i = 0; i < order; ++i)
+    row_error_[i] += kUnit * static_cast<double>(addends_[i]) * addend_sums_[i];
   return {};
 }
 

@@ -11,13 +11,15 @@ namespace stanchion {
 namespace {
 
 constexpr double kUnit = 0x1p-53;
-/// Covers the divisions by pivots (2 u for 1x1, 16 u for 2x2, both sides) and the roundings of the sums themselves.
+/// Covers the divisions by pivots (2 u for 1x1, 16 u for 2x2, both sides) and the roundings of the sums
+/// themselves.
 constexpr Index kPivotRoundings = 40;
-/// Roundings of an image besides additions: D z (3), L times that (1), three additions of four products, a unit more.
+/// Roundings of an image besides additions: D z (3), L times that (1), three additions of four products, a
+/// unit more.
 constexpr Index kImageRoundings = 8;
 
-/// True when every column of the block lands at or below the place it comes from, so that it can move over the
-/// children it has consumed, column by column, without a copy aside.
+/// True when every column of the block lands at or below the place it comes from, so that it can move over
+/// the children it has consumed, column by column, without a copy aside.
 bool moves_down(const BlockLower& from, Index first, const BlockLower& to) {
   for (Index j = 0; j < to.layout.order; ++j) {
     if (to.column(j, j) > from.column(first + j, first + j)) return false;
@@ -33,7 +35,8 @@ void copy_columns(const BlockLower& from, Index first, const BlockLower& to, std
     double* target = to.column(j, j);
     const double diagonal = source[0];
     target[0] = diagonal;
-    const double below = kernels().copy_with_abs_sums(source + 1, order - j - 1, target + 1, sums.data() + j + 1);
+    const double below =
+        kernels().copy_with_abs_sums(source + 1, order - j - 1, target + 1, sums.data() + j + 1);
     sums[static_cast<std::size_t>(j)] += std::fabs(diagonal) + below;
   }
 }
@@ -93,10 +96,15 @@ Status FrontWorker::process(Index front, ThreadPool* team) {
   diagonal_.resize(candidates);
   off_diagonal_.resize(candidates);
   kind_.resize(candidates);
-  const Front work{matrix,        rows.candidates,   {diagonal_.data(), off_diagonal_.data(), kind_.data()},
-                   label_.data(), row_error_.data(), growth_.data(),
+  const Front work{matrix,
+                   rows.candidates,
+                   {diagonal_.data(), off_diagonal_.data(), kind_.data()},
+                   label_.data(),
+                   row_error_.data(),
+                   growth_.data(),
                    {sign_.data(), image_.data(), image_error_.data()}};
-  const EliminationOptions options{run_.options.definite, run_.options.pivot_threshold, run_.factor != nullptr};
+  const EliminationOptions options{run_.options.definite, run_.options.pivot_threshold,
+                                   run_.factor != nullptr};
   const EliminationResult result = eliminate_front(work, options, scratch_, team);
   if (Status booked = book_arena(); !booked.ok()) return booked;
   const bool stuck = run_.analysis.tree.parent[front] < 0 && result.eliminated < rows.candidates;
@@ -130,7 +138,8 @@ void FrontWorker::bound_images(const FrontRows& rows, const EliminationResult& r
   }
 }
 
-/// Row `row` of the front is a pivot: its image is complete and may differ from A x by `bound` and the roundings.
+/// Row `row` of the front is a pivot: its image is complete and may differ from A x by `bound` and the
+/// roundings.
 void FrontWorker::check_image(Index row, double bound) {
   const auto i = static_cast<std::size_t>(row);
   const Index position = label_[i];
@@ -205,8 +214,8 @@ Status FrontWorker::keep_panel(const FrontRows& rows, const BlockLower& matrix, 
   return {};
 }
 
-void FrontWorker::pack(const FrontRows& rows, const BlockLower& matrix, const EliminationResult& result, double gamma,
-                       double* destination) {
+void FrontWorker::pack(const FrontRows& rows, const BlockLower& matrix, const EliminationResult& result,
+                       double gamma, double* destination) {
   const Index eliminated = result.eliminated, order = rows.order - eliminated;
   arena_.pop_to(destination);
   if (order == 0) return;

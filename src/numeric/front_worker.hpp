@@ -13,16 +13,17 @@
 
 namespace stanchion {
 
-/// What a front leaves for its parent: the Schur complement of the rows not eliminated, delayed columns first.
+/// What a front leaves for its parent: the Schur complement of the rows not eliminated, delayed columns
+/// first.
 struct Contribution {
-  double* values = nullptr;     ///< contribution_layout(order)
-  double* row_error = nullptr;  ///< bound on the row sums of the error so far
-  double* row_sums = nullptr;   ///< row sums of |values|
-  double* image = nullptr;      ///< shares of L D L^T x from the pivots so far
+  double* values = nullptr;       ///< contribution_layout(order)
+  double* row_error = nullptr;    ///< bound on the row sums of the error so far
+  double* row_sums = nullptr;     ///< row sums of |values|
+  double* image = nullptr;        ///< shares of L D L^T x from the pivots so far
   double* image_error = nullptr;  ///< bound on the rounding of `image`
   Index order = 0;
-  std::vector<Index> delayed;   ///< positions of the delayed columns
-  Buffer<double> own;           ///< set when the block left its worker's stack
+  std::vector<Index> delayed;  ///< positions of the delayed columns
+  Buffer<double> own;          ///< set when the block left its worker's stack
 
   /// Points into `doubles`, contribution_doubles(order) of them.
   void place(double* doubles);
@@ -38,7 +39,7 @@ struct FactorRun {
   Factor* factor = nullptr;                  ///< null: discard
   MemoryLedger memory;
   std::atomic<double> flops_done{0};
-  std::atomic<bool> abandon{false};          ///< a worker stopped, broke down, failed or was cancelled
+  std::atomic<bool> abandon{false};  ///< a worker stopped, broke down, failed or was cancelled
   FaultProbe probe{};
 };
 
@@ -81,13 +82,14 @@ class FrontWorker {
   Offset booked_doubles_ = 0;
   EliminationScratch scratch_;
   Offset booked_scratch_ = 0;
-  Buffer<Index> local_of_;               ///< position -> row of the current front
-  std::vector<Index> label_;             ///< row of the current front -> position
+  Buffer<Index> local_of_;    ///< position -> row of the current front
+  std::vector<Index> label_;  ///< row of the current front -> position
   std::vector<double> row_error_, growth_, addend_sums_, diagonal_, off_diagonal_;
   std::vector<double> sign_, image_, image_error_;
-  std::vector<Index> addends_;           ///< contribution blocks that reach a row
+  std::vector<Index> addends_;  ///< contribution blocks that reach a row
   std::vector<PivotKind> kind_;
-  std::vector<Index> map_, run_end_;     ///< child row -> row of the current front, and where runs of neighbours end
+  std::vector<Index> map_,
+      run_end_;  ///< child row -> row of the current front, and where runs of neighbours end
 };
 
 }  // namespace stanchion

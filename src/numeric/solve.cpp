@@ -21,8 +21,10 @@ void gather(const FactorFront& front, const double* x, Index rows, Index columns
   part.below.resize(static_cast<std::size_t>(b) * static_cast<std::size_t>(columns));
   for (Index c = 0; c < columns; ++c) {
     const double* column = x + Offset{c} * rows;
-    for (Index i = 0; i < p; ++i) part.pivots[static_cast<std::size_t>(Offset{c} * p + i)] = column[front.position[i]];
-    for (Index i = 0; i < b; ++i) part.below[static_cast<std::size_t>(Offset{c} * b + i)] = column[front.position[p + i]];
+    for (Index i = 0; i < p; ++i)
+      part.pivots[static_cast<std::size_t>(Offset{c} * p + i)] = column[front.position[i]];
+    for (Index i = 0; i < b; ++i)
+      part.below[static_cast<std::size_t>(Offset{c} * b + i)] = column[front.position[p + i]];
   }
 }
 
@@ -41,15 +43,18 @@ void forward(const FactorFront& front, double* x, Index rows, Index columns, Gat
   }
   for (Index c = 0; c < columns; ++c) {
     double* column = x + Offset{c} * rows;
-    for (Index i = 0; i < p; ++i) column[front.position[i]] = part.pivots[static_cast<std::size_t>(Offset{c} * p + i)];
-    for (Index i = 0; i < b; ++i) column[front.position[p + i]] = part.below[static_cast<std::size_t>(Offset{c} * b + i)];
+    for (Index i = 0; i < p; ++i)
+      column[front.position[i]] = part.pivots[static_cast<std::size_t>(Offset{c} * p + i)];
+    for (Index i = 0; i < b; ++i)
+      column[front.position[p + i]] = part.below[static_cast<std::size_t>(Offset{c} * b + i)];
   }
 }
 
 Status divide(const FactorFront& front, double* x, Index rows, Index columns) {
   for (Index k = 0; k < front.pivots; ++k) {
     if (front.kind[k] == PivotKind::kZero) {
-      return {StatusKind::kBadInput, "singular", "a pivot is exactly zero: the system has no unique solution", "", ""};
+      return {StatusKind::kBadInput, "singular", "a pivot is exactly zero: the system has no unique solution",
+              "", ""};
     }
     for (Index c = 0; c < columns; ++c) {
       double* column = x + Offset{c} * rows;
@@ -100,7 +105,8 @@ Status solve_or_throw(const Factor& factor, double* x, Index columns) {
   for (const FactorFront& front : factor.fronts) {
     if (Status divided = divide(front, x, factor.rows, columns); !divided.ok()) return divided;
   }
-  for (std::size_t f = factor.fronts.size(); f-- > 0;) backward(factor.fronts[f], x, factor.rows, columns, part);
+  for (std::size_t f = factor.fronts.size(); f-- > 0;)
+    backward(factor.fronts[f], x, factor.rows, columns, part);
   return {};
 }
 
@@ -139,7 +145,8 @@ Status solve_refined_or_throw(const Factor& factor, const ShiftedMatrix& matrix,
 }
 
 Status no_memory() {
-  return Status::resource_limit("out-of-memory", "the system has no more memory for a solve", "", "free memory");
+  return Status::resource_limit("out-of-memory", "the system has no more memory for a solve", "",
+                                "free memory");
 }
 
 }  // namespace

@@ -17,23 +17,26 @@ Index find_root(Buffer<Index>& set, Index node) {
 
 }  // namespace
 
-Buffer<Offset> column_counts(const Graph& graph, const Buffer<Index>& vertex_at, const Buffer<Index>& position_of,
-                             const Buffer<Index>& parent) {
+Buffer<Offset> column_counts(const Graph& graph, const Buffer<Index>& vertex_at,
+                             const Buffer<Index>& position_of, const Buffer<Index>& parent) {
   const Index n = graph.vertices;
-  // The row subtree of k (columns j with L_kj nonzero) has leaves where the skeleton has entries. Each leaf adds
-  // the row's weight to the path from it upwards; where two paths meet (their least common ancestor) one of the
-  // two is taken off again, and at the parent of k the path ends. Summing up the tree gives the counts.
+  // The row subtree of k (columns j with L_kj nonzero) has leaves where the skeleton has entries. Each leaf
+  // adds the row's weight to the path from it upwards; where two paths meet (their least common ancestor) one
+  // of the two is taken off again, and at the parent of k the path ends. Summing up the tree gives the
+  // counts.
   Buffer<Offset> count(n);
   Buffer<Index> first_descendant(n, -1), last_first(n, -1), previous_leaf(n, -1), set(n);
   for (Index k = 0; k < n; ++k) {
     set[k] = k;
-    for (Index node = k; node >= 0 && first_descendant[node] < 0; node = parent[node]) first_descendant[node] = k;
+    for (Index node = k; node >= 0 && first_descendant[node] < 0; node = parent[node])
+      first_descendant[node] = k;
   }
   // The vertex itself: its own weight starts on its own position and stops below its parent.
   for (Index k = 0; k < n; ++k) count[k] = 0;
   for (Index k = 0; k < n; ++k) {
     const Offset weight = graph.weight[vertex_at[k]];
-    if (first_descendant[k] == k) count[k] += weight;  // a leaf of the tree is the leaf of its own row subtree
+    if (first_descendant[k] == k)
+      count[k] += weight;  // a leaf of the tree is the leaf of its own row subtree
     if (parent[k] >= 0) count[parent[k]] -= weight;
   }
   for (Index j = 0; j < n; ++j) {

@@ -33,8 +33,9 @@ Result<Buffer<Index>> nested_dissection(const Graph& graph) {
   options[METIS_OPTION_COMPRESS] = 0;  // the graph is compressed already, and only then are weights honoured
   options[METIS_OPTION_CCORDER] = 0;
   options[METIS_OPTION_SEED] = 42;
-  const int status = METIS_NodeND(&vertices, as_metis(graph.start, start), as_metis(graph.adjacency, adjacency),
-                                  as_metis(graph.weight, weight), options, perm.data(), inverse.data());
+  const int status =
+      METIS_NodeND(&vertices, as_metis(graph.start, start), as_metis(graph.adjacency, adjacency),
+                   as_metis(graph.weight, weight), options, perm.data(), inverse.data());
   if (status != METIS_OK) {
     return Status::resource_limit("ordering-memory", "nested dissection ran out of memory", "",
                                   "free memory or use a smaller model");

@@ -9,7 +9,8 @@ namespace stanchion {
 /// Nested-dissection order of a connected graph: vertex_at[k] is the vertex eliminated k-th.
 /// Karypis and Kumar, SIAM J. Sci. Comput. 20 (1998). Vertex weights are honoured.
 /// Errors: resource limit when the graph has more edges than METIS's index width can hold, or it runs out of
-/// memory. METIS replaces the process's SIGTERM handler while it runs; cli/interrupt.cpp prevents that. Reproducible (fixed seed); not safe to call from two threads at once.
+/// memory. METIS replaces the process's SIGTERM handler while it runs; cli/interrupt.cpp prevents that.
+/// Reproducible (fixed seed); not safe to call from two threads at once.
 Result<Buffer<Index>> nested_dissection(const Graph& graph);
 
 }  // namespace stanchion

@@ -2,7 +2,8 @@
 
 namespace stanchion {
 
-Buffer<Index> elimination_tree(const Graph& graph, const Buffer<Index>& vertex_at, const Buffer<Index>& position_of) {
+Buffer<Index> elimination_tree(const Graph& graph, const Buffer<Index>& vertex_at,
+                               const Buffer<Index>& position_of) {
   const Index n = graph.vertices;
   Buffer<Index> parent(n, -1), ancestor(n, -1);
   for (Index k = 0; k < n; ++k) {

@@ -9,9 +9,9 @@ namespace stanchion {
 /// Both directions of every edge are stored, no loops, no duplicates.
 struct Graph {
   Index vertices = 0;
-  Buffer<Offset> start;      ///< vertices + 1
-  Buffer<Index> adjacency;   ///< start[vertices] neighbours
-  Buffer<Index> weight;      ///< equations a vertex stands for, >= 1
+  Buffer<Offset> start;     ///< vertices + 1
+  Buffer<Index> adjacency;  ///< start[vertices] neighbours
+  Buffer<Index> weight;     ///< equations a vertex stands for, >= 1
 };
 
 }  // namespace stanchion

@@ -13,9 +13,9 @@
 namespace stanchion {
 namespace {
 
-constexpr Index kDissectAbove = 120;     // smaller parts: minimum degree alone
-constexpr Index kTryBothUpTo = 20'000;   // minimum degree is then a small part of the time
-constexpr double kThinDegree = 3.0;      // chains and trees: dissection only adds fill
+constexpr Index kDissectAbove = 120;    // smaller parts: minimum degree alone
+constexpr Index kTryBothUpTo = 20'000;  // minimum degree is then a small part of the time
+constexpr double kThinDegree = 3.0;     // chains and trees: dissection only adds fill
 
 /// Operations of the factorization under this order.
 double predicted_flops(const Graph& graph, const Buffer<Index>& vertex_at) {
@@ -69,7 +69,8 @@ Grouping intersect(const Grouping& coarse, const Grouping& fine) {
   });
   Grouping grouping{0, Buffer<Index>(rows)};
   for (std::size_t k = 0; k < order.size(); ++k) {
-    const bool same = k > 0 && key[static_cast<std::size_t>(order[k])] == key[static_cast<std::size_t>(order[k - 1])];
+    const bool same =
+        k > 0 && key[static_cast<std::size_t>(order[k])] == key[static_cast<std::size_t>(order[k - 1])];
     if (!same) ++grouping.groups;
     grouping.group_of[order[k]] = grouping.groups - 1;
   }
@@ -137,7 +138,8 @@ Result<Elimination> order_equations(const OrderingInput& input) {
     elimination.component_of_vertex = components.component_of.clone();
     return elimination;
   }
-  // Eliminate node by node, but keep the exact structure inside a node (a plate's membrane and bending parts).
+  // Eliminate node by node, but keep the exact structure inside a node (a plate's membrane and bending
+  // parts).
   elimination.grouping = intersect(coarse, alike);
   elimination.graph = quotient_graph(pattern, elimination.grouping);
   const Buffer<Index> coarse_position = inverse_of(*coarse_order);

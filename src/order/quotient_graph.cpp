@@ -69,7 +69,8 @@ Grouping group_by_neighbourhood(const SymmetricMatrix& pattern) {
   for (Index i = 0; i < n; ++i) {
     const std::uint64_t mine = hash[static_cast<std::size_t>(i)];
     std::size_t slot = mine & (slots - 1);
-    while (first[slot] >= 0 && hash[static_cast<std::size_t>(first[slot])] != mine) slot = (slot + 1) & (slots - 1);
+    while (first[slot] >= 0 && hash[static_cast<std::size_t>(first[slot])] != mine)
+      slot = (slot + 1) & (slots - 1);
     if (first[slot] < 0) {
       first[slot] = i;
       grouping.group_of[i] = grouping.groups++;
@@ -104,7 +105,8 @@ Grouping join_zero_diagonals(const SymmetricMatrix& pattern, Grouping grouping,
   std::vector<Index> partner(static_cast<std::size_t>(n), kNone);
   std::vector<char> taken(static_cast<std::size_t>(n), 0);
   const auto try_pair = [&](Index zero, Index other) {
-    if (!zero_diagonal[static_cast<std::size_t>(zero)] || zero_diagonal[static_cast<std::size_t>(other)]) return;
+    if (!zero_diagonal[static_cast<std::size_t>(zero)] || zero_diagonal[static_cast<std::size_t>(other)])
+      return;
     if (partner[static_cast<std::size_t>(zero)] != kNone || taken[static_cast<std::size_t>(other)]) return;
     partner[static_cast<std::size_t>(zero)] = other;
     taken[static_cast<std::size_t>(other)] = 1;

@@ -15,12 +15,12 @@ struct Grouping {
   Buffer<Index> group_of;
 };
 
-/// Equations with identical closed neighbourhoods (by 64-bit hash; a collision only costs fill) share a group.
-/// Cost: one pass over the entries and a sort of the equations.
+/// Equations with identical closed neighbourhoods (by 64-bit hash; a collision only costs fill) share a
+/// group. Cost: one pass over the entries and a sort of the equations.
 Grouping group_by_neighbourhood(const SymmetricMatrix& pattern);
 
-/// Equations of one node share a group; `node_of` holds an arbitrary node number per equation, negative for an
-/// equation that belongs to none and stays alone.
+/// Equations of one node share a group; `node_of` holds an arbitrary node number per equation, negative for
+/// an equation that belongs to none and stays alone.
 Grouping group_by_node(Index rows, std::span<const Index> node_of);
 
 /// Joins every equation with a zero diagonal (a multiplier, say) to the group of a neighbour with a nonzero

@@ -16,7 +16,8 @@ using json_parts::json_of;
 using json_parts::Member;
 
 Json json_of_event(const RiskEvent& event) {
-  return {{"factor", json_of(event.factor)}, {"charged", json_of(event.charged)}, {"certified", event.certified}};
+  return {
+      {"factor", json_of(event.factor)}, {"charged", json_of(event.charged)}, {"certified", event.certified}};
 }
 
 RiskEvent event_of(const Member& member) {
@@ -33,7 +34,8 @@ JournalLine line_of(const Member& member, Index rows) {
   line.number = member.at("number").index();
   line.count = read_count_claim(member);
   const auto [least, most] = line.count.below_range;
-  if (least > most || most > rows || (line.count.below && (line.count.below != least || line.count.below != most))) {
+  if (least > most || most > rows ||
+      (line.count.below && (line.count.below != least || line.count.below != most))) {
     member.at("below_range").wrong("not the range of this count");
   }
   for (const Member& event : member.at("events").items()) line.events.push_back(event_of(event));
@@ -42,7 +44,8 @@ JournalLine line_of(const Member& member, Index rows) {
 
 Status bad(const std::string& path, std::size_t number, const std::string& why) {
   return Status::bad_input("bad-journal", "this is no line of a sweep's results: " + why,
-                           fmt::format("{}:{}", path, number), "name another file, or delete this one and start afresh");
+                           fmt::format("{}:{}", path, number),
+                           "name another file, or delete this one and start afresh");
 }
 
 Index rows_of(const nlohmann::json& header) {

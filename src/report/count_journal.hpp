@@ -1,4 +1,5 @@
-// The file in which a sweep keeps its counts as they come: a header line and one line a count, each a JSON object.
+// The file in which a sweep keeps its counts as they come: a header line and one line a count, each a JSON
+// object.
 #pragma once
 
 #include <string>
@@ -18,15 +19,15 @@ struct JournalLine {
   std::vector<RiskEvent> events;
 };
 
-/// What makes two runs one question: version, digests of the inputs, pencil, risk, seed and whatever else decides the
-/// counts; the grid may grow. Without the line end.
+/// What makes two runs one question: version, digests of the inputs, pencil, risk, seed and whatever else
+/// decides the counts; the grid may grow. Without the line end.
 std::string journal_header(const Request& request, const Outcome& begun);
 
 /// Without the line end.
 std::string journal_text(const JournalLine& line);
 
-/// The counts of `text`, which must begin with the line `header`. A last line that was cut off is passed over. Bad input
-/// "other-sweep" when the header differs, "bad-journal" when a line cannot be read.
+/// The counts of `text`, which must begin with the line `header`. A last line that was cut off is passed
+/// over. Bad input "other-sweep" when the header differs, "bad-journal" when a line cannot be read.
 Result<std::vector<JournalLine>> read_journal(std::string_view text, const std::string& header,
                                               const std::string& path);
 

@@ -88,7 +88,9 @@ Json json_of(const LocalAccuracy& accuracy) {
           {"typical", json_of(accuracy.typical)},
           {"largest", json_of(accuracy.largest)},
           {"histogram", list_of(accuracy.histogram,
-                                [](const auto& bin) { return Json{{"from", bin.first}, {"equations", bin.second}}; })},
+                                [](const auto& bin) {
+                                  return Json{{"from", bin.first}, {"equations", bin.second}};
+                                })},
           {"worst", list_of(accuracy.worst, [](const DofShare& worst) {
              Json entry = json_of(worst);
              entry["digits"] = entry["share"];
@@ -99,7 +101,8 @@ Json json_of(const LocalAccuracy& accuracy) {
 
 void add_location(Json& document, const LocateOutcome& located) {
   document["directions"] = list_of(located.directions, [](const Direction& d) { return json_of(d); });
-  document["components"] = list_of(located.components, [](const ComponentRecord& part) { return json_of(part); });
+  document["components"] =
+      list_of(located.components, [](const ComponentRecord& part) { return json_of(part); });
   document["location"] = {{"negative", located.negative},
                           {"zero", located.zero},
                           {"not_located", located.not_located},

@@ -1,5 +1,5 @@
-// A page of plain text, at most 100 columns wide: sentences, labelled rows, bullets and small tables. What was put on
-// it stays known block by block, so that other renderings say the same.
+// A page of plain text, at most 100 columns wide: sentences, labelled rows, bullets and small tables. What
+// was put on it stays known block by block, so that other renderings say the same.
 #pragma once
 
 #include <string>

@@ -60,7 +60,8 @@ double tick_step(double range, int many) {
 
 class StaircasePicture {
  public:
-  StaircasePicture(const std::vector<Point>& points, bool logarithmic) : points_(points), logarithmic_(logarithmic) {
+  StaircasePicture(const std::vector<Point>& points, bool logarithmic)
+      : points_(points), logarithmic_(logarithmic) {
     low_ = place(points.front().shift);
     high_ = place(points.back().shift);
     if (!(high_ > low_)) {
@@ -72,13 +73,16 @@ class StaircasePicture {
 
   std::string draw(const std::string& meaning, const std::string& axis) {
     svg_ = fmt::format(
-        "<svg xmlns=\"http://www.w3.org/2000/svg\" viewBox=\"0 0 {0:g} {1:g}\" width=\"{0:g}\" height=\"{1:g}\" "
-        "role=\"img\" style=\"max-width:100%;height:auto\" font-family=\"sans-serif\" font-size=\"13\">\n<title>{2}</title>\n",
+        "<svg xmlns=\"http://www.w3.org/2000/svg\" viewBox=\"0 0 {0:g} {1:g}\" width=\"{0:g}\" "
+        "height=\"{1:g}\" "
+        "role=\"img\" style=\"max-width:100%;height:auto\" font-family=\"sans-serif\" "
+        "font-size=\"13\">\n<title>{2}</title>\n",
         kWidth, kHeight, escaped("Staircase: " + meaning));
     svg_ += fmt::format("<rect width=\"{:g}\" height=\"{:g}\" fill=\"#ffffff\"/>\n", kWidth, kHeight);
-    svg_ += "<defs><pattern id=\"open\" width=\"6\" height=\"6\" patternUnits=\"userSpaceOnUse\" "
-            "patternTransform=\"rotate(45)\"><line x1=\"0\" y1=\"0\" x2=\"0\" y2=\"6\" stroke=\"#8a5a00\" "
-            "stroke-width=\"2\"/></pattern></defs>\n";
+    svg_ +=
+        "<defs><pattern id=\"open\" width=\"6\" height=\"6\" patternUnits=\"userSpaceOnUse\" "
+        "patternTransform=\"rotate(45)\"><line x1=\"0\" y1=\"0\" x2=\"0\" y2=\"6\" stroke=\"#8a5a00\" "
+        "stroke-width=\"2\"/></pattern></defs>\n";
     count_axis();
     shift_axis(axis);
     steps();
@@ -90,17 +94,20 @@ class StaircasePicture {
     return logarithmic_ ? std::copysign(std::log10(std::fabs(shift)), shift < 0 ? -1 : 1) : shift;
   }
   double x(double shift) const { return at(place(shift)); }
-  double at(double place) const { return kLeft + (place - low_) / (high_ - low_) * (kWidth - kLeft - kRight); }
+  double at(double place) const {
+    return kLeft + (place - low_) / (high_ - low_) * (kWidth - kLeft - kRight);
+  }
   double y(double count) const {
     return kHeight - kBottom - count / std::max<double>(most_, 1) * (kHeight - kTop - kBottom);
   }
 
   void line(double x1, double y1, double x2, double y2, const char* look) {
-    svg_ += fmt::format("<line x1=\"{:.2f}\" y1=\"{:.2f}\" x2=\"{:.2f}\" y2=\"{:.2f}\" {}/>\n", x1, y1, x2, y2, look);
+    svg_ += fmt::format("<line x1=\"{:.2f}\" y1=\"{:.2f}\" x2=\"{:.2f}\" y2=\"{:.2f}\" {}/>\n", x1, y1, x2,
+                        y2, look);
   }
   void text(double where_x, double where_y, const char* anchor, const std::string& words) {
-    svg_ += fmt::format("<text x=\"{:.2f}\" y=\"{:.2f}\" text-anchor=\"{}\" fill=\"#222222\">{}</text>\n", where_x,
-                        where_y, anchor, escaped(words));
+    svg_ += fmt::format("<text x=\"{:.2f}\" y=\"{:.2f}\" text-anchor=\"{}\" fill=\"#222222\">{}</text>\n",
+                        where_x, where_y, anchor, escaped(words));
   }
 
   void count_axis() {
@@ -118,7 +125,8 @@ class StaircasePicture {
       const int parts = 4;
       for (int k = 0; k <= parts; ++k) {
         const double where = low_ + (high_ - low_) * k / parts;
-        tick(at(where), fmt::format("{:.4g}", points_.front().shift < 0 ? -std::pow(10.0, -where) : std::pow(10.0, where)));
+        tick(at(where), fmt::format("{:.4g}", points_.front().shift < 0 ? -std::pow(10.0, -where)
+                                                                        : std::pow(10.0, where)));
       }
     } else {
       const double step = tick_step(high_ - low_, 6);
@@ -144,15 +152,16 @@ class StaircasePicture {
       const double left = x(a.shift), right = std::max(x(b.shift), left + 1.5);
       const double top = y(std::max(a.count, b.count)), bottom = y(std::min(a.count, b.count));
       svg_ += fmt::format(
-          "<rect x=\"{:.2f}\" y=\"{:.2f}\" width=\"{:.2f}\" height=\"{:.2f}\" fill=\"url(#open)\" stroke=\"#8a5a00\">"
+          "<rect x=\"{:.2f}\" y=\"{:.2f}\" width=\"{:.2f}\" height=\"{:.2f}\" fill=\"url(#open)\" "
+          "stroke=\"#8a5a00\">"
           "<title>{}</title></rect>\n",
           left, top, right - left, bottom - top,
           escaped(fmt::format("{} between {} and {}", b.count - a.count, exact(a.shift), exact(b.shift))));
     }
     for (const Point& point : points_) {
-      svg_ += fmt::format("<circle cx=\"{:.2f}\" cy=\"{:.2f}\" r=\"3\" fill=\"#0b5394\"><title>{}</title></circle>\n",
-                          x(point.shift), y(point.count),
-                          escaped(fmt::format("{} at {}", point.count, exact(point.shift))));
+      svg_ += fmt::format(
+          "<circle cx=\"{:.2f}\" cy=\"{:.2f}\" r=\"3\" fill=\"#0b5394\"><title>{}</title></circle>\n",
+          x(point.shift), y(point.count), escaped(fmt::format("{} at {}", point.count, exact(point.shift))));
     }
   }
 
@@ -165,7 +174,8 @@ class StaircasePicture {
 
 /// "factor f", "shift s".
 std::string axis_of(const std::string& meaning) {
-  const bool factors = meaning.find("factor") != std::string::npos || meaning.find("f G") != std::string::npos;
+  const bool factors =
+      meaning.find("factor") != std::string::npos || meaning.find("f G") != std::string::npos;
   return factors ? "load factor f" : "shift s";
 }
 

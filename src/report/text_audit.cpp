@@ -40,11 +40,13 @@ std::string list_of(const std::vector<std::string>& labels) {
 void write_audit(Page& page, const Outcome& outcome) {
   const AuditOutcome& audit = *outcome.audit;
   const CountedRange& range = audit.range;
-  page.sentence(fmt::format("{}: {} listed between {} and {}, {} counted.", verdict_in_words(audit), grouped(audit.listed),
-                            end_of(range.from, audit.in_hertz), end_of(range.to, audit.in_hertz),
+  page.sentence(fmt::format("{}: {} listed between {} and {}, {} counted.", verdict_in_words(audit),
+                            grouped(audit.listed), end_of(range.from, audit.in_hertz),
+                            end_of(range.to, audit.in_hertz),
                             range.count ? grouped(*range.count) : "an unknown number"));
   for (const std::string& sentence : audit.sentences) page.sentence(sentence);
-  if (audit.outside > 0) page.sentence(fmt::format("{} outside the range left out.", counted(audit.outside, "value")));
+  if (audit.outside > 0)
+    page.sentence(fmt::format("{} outside the range left out.", counted(audit.outside, "value")));
   if (!audit.gaps.empty()) {
     page.blank();
     std::vector<std::vector<std::string>> rows{{"from", "to", "listed", "counted", "what is listed"}};

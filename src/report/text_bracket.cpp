@@ -46,16 +46,19 @@ void write_headline(Page& page, const Outcome& outcome) {
   const BracketOutcome& bracket = *outcome.bracket;
   const std::string noun = noun_of(outcome);
   if (!bracket.complete || !bracket.complete->count) {
-    page.sentence(bracket.critical.empty()
-                      ? fmt::format("No {} could be bracketed.", noun)
-                      : fmt::format("{} bracketed; that these are all is not shown.",
-                                    counted(static_cast<Offset>(bracket.critical.size()), noun + " or group")));
+    page.sentence(bracket.critical.empty() ? fmt::format("No {} could be bracketed.", noun)
+                                           : fmt::format("{} bracketed; that these are all is not shown.",
+                                                         counted(static_cast<Offset>(bracket.critical.size()),
+                                                                 noun + " or group")));
     return;
   }
   const CountedRange& range = *bracket.complete;
-  page.sentence(fmt::format("{} {}, certified.", *range.count == 0 ? "No " + noun : counted(*range.count, noun), range_in_words(range, bracket.in_hertz)));
+  page.sentence(fmt::format("{} {}, certified.",
+                            *range.count == 0 ? "No " + noun : counted(*range.count, noun),
+                            range_in_words(range, bracket.in_hertz)));
   if (bracket.more_than_asked > 0) {
-    page.sentence(fmt::format("{} more than asked: the last ones are not told apart.", grouped(bracket.more_than_asked)));
+    page.sentence(fmt::format("{} more than asked: the last ones are not told apart.",
+                              grouped(bracket.more_than_asked)));
   }
 }
 
@@ -72,8 +75,9 @@ void write_values(Page& page, const std::vector<CriticalValue>& values, bool her
   if (hertz) heading.insert(heading.begin(), "Hz");
   rows.push_back(heading);
   for (const CriticalValue& value : values) {
-    std::vector<std::string> row{digits_of(value.value, value.low, value.high), exact(value.low), exact(value.high),
-                                 grouped(value.multiplicity) + (value.rigid_body ? ", rigid body or mechanism" : "")};
+    std::vector<std::string> row{
+        digits_of(value.value, value.low, value.high), exact(value.low), exact(value.high),
+        grouped(value.multiplicity) + (value.rigid_body ? ", rigid body or mechanism" : "")};
     if (!one) row.push_back(proof_in_words(value));
     if (hertz) {
       row.insert(row.begin(), digits_of(hertz_of(value.value), hertz_of(value.low), hertz_of(value.high)));

@@ -29,8 +29,8 @@ void write_path(Page& page, const Outcome& outcome) {
     page.sentence(fmt::format("All {} steps are positive definite.", grouped(many)));
   } else {
     const PathStep& step = path.steps[static_cast<std::size_t>(*path.first_not_definite - 1)];
-    page.sentence(fmt::format("Step {} of {} ({}) is the first that is not positive definite: {}.", *path.first_not_definite,
-                              grouped(many), step.path, words_of(step.verdict)));
+    page.sentence(fmt::format("Step {} of {} ({}) is the first that is not positive definite: {}.",
+                              *path.first_not_definite, grouped(many), step.path, words_of(step.verdict)));
   }
   if (path.first_negative) {
     page.sentence(fmt::format("The first negative direction appears at step {}.", *path.first_negative));
@@ -40,9 +40,10 @@ void write_path(Page& page, const Outcome& outcome) {
   std::vector<std::vector<std::string>> rows{{"step", "", "verdict", "directions", "backed by", "matrix"}};
   for (std::size_t k = 0; k < path.steps.size(); ++k) {
     const PathStep& step = path.steps[k];
-    rows.push_back({grouped(static_cast<Offset>(k) + 1), step.changed ? "changed" : "", words_of(step.verdict),
-                    signs_of(step.inertia),
-                    backing_in_words(step.certificate.level, step.certificate.failure_probability), step.path});
+    rows.push_back({grouped(static_cast<Offset>(k) + 1), step.changed ? "changed" : "",
+                    words_of(step.verdict), signs_of(step.inertia),
+                    backing_in_words(step.certificate.level, step.certificate.failure_probability),
+                    step.path});
   }
   page.table(rows, 1);
 }

@@ -24,7 +24,8 @@ std::vector<Point> known_points(const std::vector<ShiftCount>& counts) {
   return points;
 }
 
-/// A row for each height, top first; '_' where the count is known between shifts, ':' where it changes somewhere.
+/// A row for each height, top first; '_' where the count is known between shifts, ':' where it changes
+/// somewhere.
 void write_picture(Page& page, const std::vector<Point>& points) {
   if (points.size() < 2 || !(points.back().shift > points.front().shift)) return;
   Index most = 0;
@@ -77,8 +78,9 @@ void write_jumps(Page& page, const Outcome& outcome) {
   }
   Index sum = 0;
   for (const Jump& jump : jumps) sum += jump.count;
-  page.sentence(fmt::format("{} {} in {}:", grouped(sum), who,
-                            jumps.size() == 1 ? std::string("one stretch") : fmt::format("{} stretches", jumps.size())));
+  page.sentence(fmt::format(
+      "{} {} in {}:", grouped(sum), who,
+      jumps.size() == 1 ? std::string("one stretch") : fmt::format("{} stretches", jumps.size())));
   page.blank();
   std::vector<std::vector<std::string>> rows{{"from", "to", "width", who}};
   for (const Jump& jump : jumps) {
@@ -92,15 +94,17 @@ void write_jumps(Page& page, const Outcome& outcome) {
 void write_sweep(Page& page, const Outcome& outcome) {
   const CountOutcome& answer = *outcome.count;
   for (const Contradiction& pair : outcome.sweep->contradictions) {
-    page.sentence(fmt::format("DEFECT: the counts at {} and {} contradict each other; nothing here is to be trusted.",
-                              exact(pair.shift), exact(pair.other_shift)));
+    page.sentence(
+        fmt::format("DEFECT: the counts at {} and {} contradict each other; nothing here is to be trusted.",
+                    exact(pair.shift), exact(pair.other_shift)));
   }
   const bool all = std::all_of(answer.counts.begin(), answer.counts.end(), [](const ShiftCount& count) {
     return count.below.has_value() && count.level != Level::kNone;
   });
   std::string who = what(answer);
   who[0] = static_cast<char>(who[0] - 'a' + 'A');
-  page.sentence(fmt::format("{} counted at {}, {}.", who, counted(static_cast<Offset>(answer.counts.size()), "shift"),
+  page.sentence(fmt::format("{} counted at {}, {}.", who,
+                            counted(static_cast<Offset>(answer.counts.size()), "shift"),
                             all ? "every count certified" : "not every count certified"));
   write_jumps(page, outcome);
   for (const std::string& sentence : answer.sentences) page.sentence(sentence);

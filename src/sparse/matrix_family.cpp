@@ -8,7 +8,8 @@ namespace {
 
 /// Walks column `j` of every member and the diagonal in ascending row order; visit(row, member or -1, value).
 template <class Visit>
-void merge_column(std::span<const SymmetricMatrix* const> members, Index j, std::vector<Offset>& at, const Visit& visit) {
+void merge_column(std::span<const SymmetricMatrix* const> members, Index j, std::vector<Offset>& at,
+                  const Visit& visit) {
   for (std::size_t t = 0; t < members.size(); ++t) at[t] = members[t]->column_start[j];
   Index next = j;  // the diagonal is always present
   for (;;) {
@@ -18,7 +19,8 @@ void merge_column(std::span<const SymmetricMatrix* const> members, Index j, std:
     }
     Index following = members[0]->rows;
     for (std::size_t t = 0; t < members.size(); ++t) {
-      if (at[t] < members[t]->column_start[Offset{j} + 1]) following = std::min(following, members[t]->row[at[t]]);
+      if (at[t] < members[t]->column_start[Offset{j} + 1])
+        following = std::min(following, members[t]->row[at[t]]);
     }
     if (following == members[0]->rows) return;
     next = following;
@@ -124,7 +126,8 @@ double ShiftedMatrix::entry_error(Offset k, Index row, Index column) const {
   }
   // One product and at most (members - 1) additions a term; the scale is a power of two.
   const double gamma = static_cast<double>(coefficients.size() + 1) * kUnit;
-  return gamma * magnitude * ((*scale)[row] * (*scale)[column]) + static_cast<double>(coefficients.size() + 1) * kTiny;
+  return gamma * magnitude * ((*scale)[row] * (*scale)[column]) +
+         static_cast<double>(coefficients.size() + 1) * kTiny;
 }
 
 }  // namespace stanchion

@@ -9,8 +9,8 @@
 
 namespace stanchion {
 
-/// Lower triangle by columns, one value array per member; every diagonal entry is present (zero where no member
-/// has one). Rows within a column need not ascend after permute().
+/// Lower triangle by columns, one value array per member; every diagonal entry is present (zero where no
+/// member has one). Rows within a column need not ascend after permute().
 struct MatrixFamily {
   Index rows = 0;
   Buffer<Offset> column_start;
@@ -20,7 +20,8 @@ struct MatrixFamily {
   Offset entries() const { return row.size(); }
 };
 
-/// The union of the patterns of `members` (all of the same size, at least one). Cost: one merge over the entries.
+/// The union of the patterns of `members` (all of the same size, at least one). Cost: one merge over the
+/// entries.
 MatrixFamily unite(std::span<const SymmetricMatrix* const> members);
 
 /// The family with equation i renamed position_of[i]. Columns come out ascending in column, rows in no order.
@@ -45,9 +46,7 @@ struct ShiftedMatrix {
   double entry_error(Offset k, Index row, Index column) const;
 
   /// True when every entry is exact: one member with coefficient 1 or -1.
-  bool exact() const {
-    return coefficients.size() == 1 && (coefficients[0] == 1 || coefficients[0] == -1);
-  }
+  bool exact() const { return coefficients.size() == 1 && (coefficients[0] == 1 || coefficients[0] == -1); }
 };
 
 }  // namespace stanchion

@@ -8,7 +8,8 @@ namespace stanchion {
 namespace {
 
 template <class Entry>
-void multiply_with(const ShiftedMatrix& matrix, std::span<const double> x, std::span<double> y, const Entry& value) {
+void multiply_with(const ShiftedMatrix& matrix, std::span<const double> x, std::span<double> y,
+                   const Entry& value) {
   const MatrixFamily& family = *matrix.family;
   std::fill(y.begin(), y.end(), 0.0);
   for (Index j = 0; j < family.rows; ++j) {

@@ -16,7 +16,9 @@ double magnitude(const MatrixFamily& family, std::span<const double> coefficient
 }
 
 /// log2 of a positive number, or a very small number for zero.
-double log2_or_least(double value) { return value > 0 ? std::log2(value) : -1e9; }
+double log2_or_least(double value) {
+  return value > 0 ? std::log2(value) : -1e9;
+}
 
 std::vector<double> diagonal_of(const MatrixFamily& family, std::span<const double> coefficients) {
   std::vector<double> diagonal(static_cast<std::size_t>(family.rows), 0);
@@ -41,7 +43,8 @@ bool diagonal_dominates(const MatrixFamily& family, std::span<const double> coef
   for (Index j = 0; j < family.rows; ++j) {
     const double own = root[static_cast<std::size_t>(j)] * 1.000001;
     for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-      if (magnitude(family, coefficients, k) > own * root[static_cast<std::size_t>(family.row[k])]) return false;
+      if (magnitude(family, coefficients, k) > own * root[static_cast<std::size_t>(family.row[k])])
+        return false;
     }
   }
   return true;
@@ -75,7 +78,8 @@ std::vector<double> equilibrated_exponents(const MatrixFamily& family, std::span
 
 }  // namespace
 
-Result<Buffer<double>> power_of_two_scaling(const MatrixFamily& family, std::span<const double> coefficients) {
+Result<Buffer<double>> power_of_two_scaling(const MatrixFamily& family,
+                                            std::span<const double> coefficients) {
   const std::vector<double> diagonal = diagonal_of(family, coefficients);
   std::vector<double> exponent;
   if (diagonal_dominates(family, coefficients, diagonal)) {
@@ -93,9 +97,10 @@ Result<Buffer<double>> power_of_two_scaling(const MatrixFamily& family, std::spa
     for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
       const double scaled = magnitude(family, coefficients, k) * scale[family.row[k]] * scale[j];
       if (scaled <= 0x1p900) continue;
-      return Status::bad_input("scaling-range", "the entries span more orders of magnitude than doubles can hold",
-                               "row " + std::to_string(family.row[k] + 1) + ", column " + std::to_string(j + 1),
-                               "check the units of this entry");
+      return Status::bad_input(
+          "scaling-range", "the entries span more orders of magnitude than doubles can hold",
+          "row " + std::to_string(family.row[k] + 1) + ", column " + std::to_string(j + 1),
+          "check the units of this entry");
     }
   }
   return scale;

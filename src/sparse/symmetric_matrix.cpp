@@ -29,7 +29,8 @@ SymmetricMatrix from_triplets(Index rows, const std::vector<Triplet>& triplets) 
     return a.column != b.column ? a.column < b.column : a.row < b.row;
   });
   const auto count = static_cast<Offset>(lower.size());
-  SymmetricMatrix matrix{rows, Buffer<Offset>(Offset{rows} + 1, 0), Buffer<Index>(count), Buffer<double>(count)};
+  SymmetricMatrix matrix{rows, Buffer<Offset>(Offset{rows} + 1, 0), Buffer<Index>(count),
+                         Buffer<double>(count)};
   Offset used = 0;
   for (std::size_t k = 0; k < lower.size(); ++k) {
     const Triplet& entry = lower[k];

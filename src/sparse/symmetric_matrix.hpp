@@ -32,8 +32,8 @@ struct Triplet {
   double value;
 };
 
-/// Lower triangle of the symmetric matrix whose entries are `triplets` (either triangle, any order; entries of
-/// the same place are summed in the order given). For tests and generated models; files go through io/.
+/// Lower triangle of the symmetric matrix whose entries are `triplets` (either triangle, any order; entries
+/// of the same place are summed in the order given). For tests and generated models; files go through io/.
 SymmetricMatrix from_triplets(Index rows, const std::vector<Triplet>& triplets);
 
 }  // namespace stanchion

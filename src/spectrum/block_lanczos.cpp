@@ -12,13 +12,15 @@ namespace stanchion {
 namespace {
 
 constexpr Index kDense = 320;  ///< up to so many rows the whole space is taken
-constexpr Offset kPieces = 16;  ///< of the rows, each with sums of its own: the same for any number of threads
+constexpr Offset kPieces =
+    16;  ///< of the rows, each with sums of its own: the same for any number of threads
 
 std::size_t at(Offset i) {
   return static_cast<std::size_t>(i);
 }
 
-/// Upper triangular R with R^T R = gram (8 x 8); columns that depend on earlier ones, up to rounding, get a zero pivot.
+/// Upper triangular R with R^T R = gram (8 x 8); columns that depend on earlier ones, up to rounding, get a
+/// zero pivot.
 std::vector<double> cholesky(std::vector<double> gram) {
   constexpr Index kV = kBlockVectors;
   std::vector<double> r(kV * kV, 0.0);
@@ -40,7 +42,8 @@ std::vector<double> cholesky(std::vector<double> gram) {
 
 }  // namespace
 
-BlockLanczos::BlockLanczos(Operator apply, Index rows, Index most_columns, std::uint64_t seed, ThreadPool& pool)
+BlockLanczos::BlockLanczos(Operator apply, Index rows, Index most_columns, std::uint64_t seed,
+                           ThreadPool& pool)
     : apply_(std::move(apply)),
       rows_(rows),
       most_columns_(most_columns),
@@ -74,7 +77,8 @@ void BlockLanczos::take_whole_space() {
     }
     apply_(block.data());
     for (Index i = 0; i < rows_; ++i) {
-      for (Index v = 0; v < count; ++v) projected_[at(Offset{first + v} * rows_ + i)] = block[at(Offset{i} * kV + v)];
+      for (Index v = 0; v < count; ++v)
+        projected_[at(Offset{first + v} * rows_ + i)] = block[at(Offset{i} * kV + v)];
     }
   }
 }
@@ -100,8 +104,8 @@ void BlockLanczos::project(const double* block, std::vector<double>& coefficient
   const std::size_t size = at(Offset{columns_} * kV);
   std::vector<double> parts(size * at(kPieces), 0.0);
   for_pieces([&](Offset begin, Offset end, Offset piece) {
-    gemm_nt(columns_, kV, static_cast<Index>(end - begin), 1, basis_.data() + begin * most_columns_, most_columns_,
-            block + begin * kV, kV, 0, parts.data() + at(piece) * size, columns_);
+    gemm_nt(columns_, kV, static_cast<Index>(end - begin), 1, basis_.data() + begin * most_columns_,
+            most_columns_, block + begin * kV, kV, 0, parts.data() + at(piece) * size, columns_);
   });
   coefficients.assign(size, 0.0);
   for (std::size_t piece = 0; piece < at(kPieces); ++piece) {
@@ -117,8 +121,9 @@ void BlockLanczos::subtract(double* block, const std::vector<double>& coefficien
   });
 }
 
-/// Makes the columns of `block`, orthogonal to the basis already, orthonormal. Columns that vanish are replaced by random
-/// ones, orthogonal to everything; `triangle` (8 x 8, R of the factorization) has zeros there. Two rounds of Cholesky QR.
+/// Makes the columns of `block`, orthogonal to the basis already, orthonormal. Columns that vanish are
+/// replaced by random ones, orthogonal to everything; `triangle` (8 x 8, R of the factorization) has zeros
+/// there. Two rounds of Cholesky QR.
 void BlockLanczos::orthonormalise(double* block, std::vector<double>* triangle) {
   std::vector<double> total(kV * kV, 0.0);
   for (Index k = 0; k < kV; ++k) total[at(k * kV + k)] = 1;
@@ -263,19 +268,20 @@ std::vector<double> BlockLanczos::vectors(const std::vector<RitzValue>& chosen) 
   const auto m = columns_;
   std::vector<double> coefficients(at(Offset{m} * kV), 0.0);
   for (std::size_t v = 0; v < chosen.size() && v < at(kV); ++v) {
-    std::copy(rotation_.begin() + Offset{chosen[v].column} * m, rotation_.begin() + Offset{chosen[v].column + 1} * m,
+    std::copy(rotation_.begin() + Offset{chosen[v].column} * m,
+              rotation_.begin() + Offset{chosen[v].column + 1} * m,
               coefficients.begin() + static_cast<Offset>(v) * m);
   }
   std::vector<double> block(at(Offset{rows_} * kV), 0.0);
   for_pieces([&](Offset begin, Offset end, Offset) {
-    gemm_tn(kV, static_cast<Index>(end - begin), m, 1, coefficients.data(), m, basis_.data() + begin * most_columns_,
-            most_columns_, 0, block.data() + begin * kV, kV);
+    gemm_tn(kV, static_cast<Index>(end - begin), m, 1, coefficients.data(), m,
+            basis_.data() + begin * most_columns_, most_columns_, 0, block.data() + begin * kV, kV);
   });
   return block;
 }
 
-/// The basis becomes its `keep` best approximations, in place; what couples them to the next block is found when the
-/// operator is applied to that.
+/// The basis becomes its `keep` best approximations, in place; what couples them to the next block is found
+/// when the operator is applied to that.
 void BlockLanczos::restart(const KeptValues& kept) {
   std::vector<RitzValue> ritz;
   KeptValues left = kept;
@@ -297,8 +303,8 @@ void BlockLanczos::restart(const KeptValues& kept) {
     std::vector<double> part(at(kRows * keep));
     for (Offset first = begin; first < end; first += kRows) {
       const Offset last = std::min(first + kRows, end);
-      gemm_tn(keep, static_cast<Index>(last - first), m, 1, chosen.data(), m, basis_.data() + first * most_columns_,
-              most_columns_, 0, part.data(), keep);
+      gemm_tn(keep, static_cast<Index>(last - first), m, 1, chosen.data(), m,
+              basis_.data() + first * most_columns_, most_columns_, 0, part.data(), keep);
       for (Offset i = first; i < last; ++i) {
         std::copy(part.begin() + (i - first) * keep, part.begin() + (i - first + 1) * keep,
                   basis_.data() + i * most_columns_);

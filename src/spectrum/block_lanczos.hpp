@@ -1,4 +1,5 @@
-// Largest eigenvalues in size, of either sign, of a symmetric operator: block Lanczos with full orthogonalisation.
+// Largest eigenvalues in size, of either sign, of a symmetric operator: block Lanczos with full
+// orthogonalisation.
 #pragma once
 
 #include <cstdint>
@@ -13,7 +14,8 @@
 
 namespace stanchion {
 
-/// An approximate eigenvalue and how far its vector is from being one, both as computed: estimates, no bounds.
+/// An approximate eigenvalue and how far its vector is from being one, both as computed: estimates, no
+/// bounds.
 struct RitzValue {
   double value = 0, residual = 0;
   Index column = 0;  ///< of the basis rotation, for vectors()
@@ -24,20 +26,23 @@ struct KeptValues {
   Index positive = 0, negative = 0;
 };
 
-/// Blocks of eight vectors, so that the operator reads its factor once for all of them and clusters of up to eight come out
-/// together; every new block is orthogonalised twice against the whole basis (Golub and Underwood 1977; Parlett, The
-/// Symmetric Eigenvalue Problem, 1998, ch. 13). When the basis is full it is reduced to the best approximations (thick
-/// restart; Wu and Simon, SIAM J. Matrix Anal. 22 (2000)). Same bits for any number of threads.
+/// Blocks of eight vectors, so that the operator reads its factor once for all of them and clusters of up to
+/// eight come out together; every new block is orthogonalised twice against the whole basis (Golub and
+/// Underwood 1977; Parlett, The Symmetric Eigenvalue Problem, 1998, ch. 13). When the basis is full it is
+/// reduced to the best approximations (thick restart; Wu and Simon, SIAM J. Matrix Anal. 22 (2000)). Same
+/// bits for any number of threads.
 class BlockLanczos {
  public:
   using Operator = std::function<void(double* block)>;  ///< in place, kBlockVectors doubles a row
 
-  /// `most_columns`: of the basis, a multiple of kBlockVectors, at least six blocks. Up to 320 rows the whole space is
-  /// taken at once. `seed` draws the first block. Throws std::bad_alloc. Memory: most_columns + 16 doubles a row.
+  /// `most_columns`: of the basis, a multiple of kBlockVectors, at least six blocks. Up to 320 rows the whole
+  /// space is taken at once. `seed` draws the first block. Throws std::bad_alloc. Memory: most_columns + 16
+  /// doubles a row.
   BlockLanczos(Operator apply, Index rows, Index most_columns, std::uint64_t seed, ThreadPool& pool);
 
-  /// One application of the operator: eight more basis vectors, after a restart that keeps `keep` approximations when
-  /// there is no room. False when the space is exhausted: the approximations are then all there is.
+  /// One application of the operator: eight more basis vectors, after a restart that keeps `keep`
+  /// approximations when there is no room. False when the space is exhausted: the approximations are then all
+  /// there is.
   bool step(const KeptValues& keep);
 
   /// A block of fresh random vectors joins the space: for what the first one may have missed.
@@ -67,11 +72,11 @@ class BlockLanczos {
   Index rows_, most_columns_, columns_ = 0, steps_ = 0;
   std::uint64_t seed_, drawn_ = 0;
   ThreadPool& pool_;
-  Buffer<double> basis_;               ///< most_columns_ doubles a row
-  std::vector<double> projected_;      ///< Q^T A Q, most_columns_ x most_columns_, column-major
-  std::vector<double> next_;           ///< orthonormal block that joins the basis at the next step
-  std::vector<double> coupling_;       ///< A Q_last = Q (...) + next coupling, 8 x 8
-  std::vector<double> rotation_;       ///< eigenvectors of the projected operator
+  Buffer<double> basis_;           ///< most_columns_ doubles a row
+  std::vector<double> projected_;  ///< Q^T A Q, most_columns_ x most_columns_, column-major
+  std::vector<double> next_;       ///< orthonormal block that joins the basis at the next step
+  std::vector<double> coupling_;   ///< A Q_last = Q (...) + next coupling, 8 x 8
+  std::vector<double> rotation_;   ///< eigenvectors of the projected operator
   std::vector<RitzValue> ritz_;
   bool exhausted_ = false;
 };

@@ -1,4 +1,5 @@
-// A definite matrix with its factor kept, and how well the factor stands for the matrix: rigorous energy norms.
+// A definite matrix with its factor kept, and how well the factor stands for the matrix: rigorous energy
+// norms.
 #pragma once
 
 #include <memory>
@@ -12,19 +13,19 @@
 namespace stanchion {
 
 struct DefiniteBaseOptions {
-  FactorOptions factor;             ///< definite and keep_factor are set here
-  double smallest_eigenvalue = 0;   ///< proved lower bound of the scaled matrix; 0: none known
-  RiskBudget* risk = nullptr;       ///< for the relative test where no proof is close enough; null: proofs only
+  FactorOptions factor;            ///< definite and keep_factor are set here
+  double smallest_eigenvalue = 0;  ///< proved lower bound of the scaled matrix; 0: none known
+  RiskBudget* risk = nullptr;  ///< for the relative test where no proof is close enough; null: proofs only
   std::uint64_t seed = 1;
 };
 
-/// B = M (I + F) M^T with M = L sqrt(D), ||F|| <= relative() < 1 and ||M^-1|| <= inverse_norm(). Vectors are blocks of
-/// kBlockVectors doubles a row, in elimination order. Derivation: residual_bound.md.
+/// B = M (I + F) M^T with M = L sqrt(D), ||F|| <= relative() < 1 and ||M^-1|| <= inverse_norm(). Vectors are
+/// blocks of kBlockVectors doubles a row, in elimination order. Derivation: residual_bound.md.
 class DefiniteBase {
  public:
-  /// Nothing when B is not definite, or cannot be shown so. `analysis`, `pool` and what `matrix` refers to outlive the
-  /// object. Errors: those of factorize() and certify_relative(). Cost: one factorization, kept, and for the relative test
-  /// two passes over L more.
+  /// Nothing when B is not definite, or cannot be shown so. `analysis`, `pool` and what `matrix` refers to
+  /// outlive the object. Errors: those of factorize() and certify_relative(). Cost: one factorization, kept,
+  /// and for the relative test two passes over L more.
   static Result<std::optional<DefiniteBase>> make(const Analysis& analysis, const ShiftedMatrix& matrix,
                                                   const DefiniteBaseOptions& options, ThreadPool& pool);
 
@@ -32,8 +33,8 @@ class DefiniteBase {
   void solve(double* block);
   void transposed_solve(double* block);
 
-  /// ||computed M^-1 b - M^-1 b|| <= inverse_norm() solve_error() ||computed||; and x = computed M^-T y solves
-  /// M^T x = y + h with ||h|| <= solve_error() ||x||.
+  /// ||computed M^-1 b - M^-1 b|| <= inverse_norm() solve_error() ||computed||; and x = computed M^-T y
+  /// solves M^T x = y + h with ||h|| <= solve_error() ||x||.
   double solve_error() const { return solve_error_; }
   double relative() const { return relative_; }
   double inverse_norm() const { return inverse_norm_; }

@@ -7,7 +7,8 @@ namespace stanchion {
 namespace {
 
 void sort_by_low(std::vector<ValueSpan>& spans) {
-  std::stable_sort(spans.begin(), spans.end(), [](const ValueSpan& a, const ValueSpan& b) { return a.low < b.low; });
+  std::stable_sort(spans.begin(), spans.end(),
+                   [](const ValueSpan& a, const ValueSpan& b) { return a.low < b.low; });
 }
 
 double middle(double a, double b) {
@@ -32,8 +33,8 @@ std::vector<ValueSpan> clusters_of(std::vector<ValueSpan> values) {
   return clusters;
 }
 
-std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain, double from,
-                                   double to) {
+std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed,
+                                   const std::vector<ValueSpan>& certain, double from, double to) {
   struct Item {
     double low, high;
     bool is_listed;
@@ -41,7 +42,8 @@ std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed, const s
   };
   std::vector<Item> items;
   for (std::size_t k = 0; k < listed.size(); ++k) items.push_back({listed[k].low, listed[k].high, true, k});
-  for (std::size_t k = 0; k < certain.size(); ++k) items.push_back({certain[k].low, certain[k].high, false, k});
+  for (std::size_t k = 0; k < certain.size(); ++k)
+    items.push_back({certain[k].low, certain[k].high, false, k});
   std::stable_sort(items.begin(), items.end(), [](const Item& a, const Item& b) { return a.low < b.low; });
   std::vector<Stretch> stretches;
   for (const Item& item : items) {
@@ -71,7 +73,8 @@ std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed, const s
 
 std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to) {
   std::vector<double> shifts{from};
-  for (std::size_t k = 1; k < clusters.size(); ++k) shifts.push_back(middle(clusters[k - 1].high, clusters[k].low));
+  for (std::size_t k = 1; k < clusters.size(); ++k)
+    shifts.push_back(middle(clusters[k - 1].high, clusters[k].low));
   shifts.push_back(to);
   return shifts;
 }

@@ -18,20 +18,22 @@ struct ValueSpan {
 /// Listed values whose tolerances meet are one cluster; ascending. `values`: one span each, in any order.
 std::vector<ValueSpan> clusters_of(std::vector<ValueSpan> values);
 
-/// A stretch of the range with what is listed and what is certain in it. The stretches fill the range, and no value of
-/// either kind reaches over an end of one.
+/// A stretch of the range with what is listed and what is certain in it. The stretches fill the range, and no
+/// value of either kind reaches over an end of one.
 struct Stretch {
   double low = 0, high = 0;
   Index listed = 0, certain = 0;
-  std::vector<std::size_t> members;       ///< numbers of the listed values
-  std::vector<std::size_t> certain_spans; ///< numbers of the certain ones
+  std::vector<std::size_t> members;        ///< numbers of the listed values
+  std::vector<std::size_t> certain_spans;  ///< numbers of the certain ones
 };
 
-/// Joins listed and certain spans that meet, and cuts the range from `from` to `to` midway between what is left apart.
-std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain, double from,
-                                   double to);
+/// Joins listed and certain spans that meet, and cuts the range from `from` to `to` midway between what is
+/// left apart.
+std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed,
+                                   const std::vector<ValueSpan>& certain, double from, double to);
 
-/// Where one count each tells what every cluster holds: `from`, the middle between neighbouring clusters, `to`.
+/// Where one count each tells what every cluster holds: `from`, the middle between neighbouring clusters,
+/// `to`.
 std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to);
 
 }  // namespace stanchion

@@ -64,13 +64,15 @@ Interval interval_of(const DefiniteBase& base, const std::vector<ResidualPair>& 
       const double product = std::inner_product(pairs[p].coordinates.begin(), pairs[p].coordinates.end(),
                                                 pairs[q].coordinates.begin(), 0.0) /
                              (pairs[p].norm * pairs[q].norm);
-      const double entry = std::fabs(product - (p == q ? 1.0 : 0.0)) + 1.01 * (rows + 8) * kUnit + 4e-6 * (p == q);
+      const double entry =
+          std::fabs(product - (p == q ? 1.0 : 0.0)) + 1.01 * (rows + 8) * kUnit + 4e-6 * (p == q);
       deviation += entry * entry;
     }
   }
   // X^T B X = (Y + H)^T (I + F)(Y + H), every column of Y of norm about 1, of H at most `stray`.
   const double y = std::sqrt(1 + std::sqrt(deviation)), h = std::sqrt(k) * stray;
-  const double epsilon = 1.001 * (std::sqrt(deviation) + base.relative() * (y + h) * (y + h) + 2 * y * h + h * h);
+  const double epsilon =
+      1.001 * (std::sqrt(deviation) + base.relative() * (y + h) * (y + h) + 2 * y * h + h * h);
   if (!(epsilon < 0.9)) return {-INFINITY, INFINITY};
   const double rho = 1.001 * std::sqrt(residual), middle = least + (most - least) / 2;
   const double spread = std::max(most - middle, middle - least);
@@ -105,7 +107,8 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
   for (std::size_t v = 0; v < static_cast<std::size_t>(count); ++v) {
     ResidualPair pair;
     const double size = std::fabs(theta[v]);
-    // r as computed differs from C x - theta B x by the roundings of both products, of theta times one, of the sum.
+    // r as computed differs from C x - theta B x by the roundings of both products, of theta times one, of
+    // the sum.
     const double rounding = 1.01 * kUnit * (c_norm[v] + 2 * size * b_norm[v] + r_norm[v]) +
                             (second_size.product_error() + size * base_size.product_error()) * x_norm[v] +
                             0x1p-500;
@@ -126,7 +129,8 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
   return pairs;
 }
 
-std::vector<EigenvalueGroup> disjoint_groups(const DefiniteBase& base, const std::vector<ResidualPair>& pairs) {
+std::vector<EigenvalueGroup> disjoint_groups(const DefiniteBase& base,
+                                             const std::vector<ResidualPair>& pairs) {
   std::vector<std::size_t> order;
   for (std::size_t p = 0; p < pairs.size(); ++p) {
     if (std::isfinite(pairs[p].radius)) order.push_back(p);
@@ -153,7 +157,8 @@ std::vector<EigenvalueGroup> disjoint_groups(const DefiniteBase& base, const std
 std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const ShiftedMatrix& second,
                                                      const std::vector<ResidualPair>& pairs) {
   const std::size_t k = pairs.size(), rows = static_cast<std::size_t>(base.rows());
-  // Coordinates after one step of inverse iteration: y + M^-1 r / theta; and the products that Rayleigh and Ritz need.
+  // Coordinates after one step of inverse iteration: y + M^-1 r / theta; and the products that Rayleigh and
+  // Ritz need.
   std::vector<std::vector<double>> y(k), x(k), bx(k), cx(k);
   const auto in_blocks = [&](const auto& visit) {
     for (std::size_t first = 0; first < k; first += kV) visit(first, std::min(kV, k - first));
@@ -166,7 +171,8 @@ std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const S
     return block;
   };
   in_blocks([&](std::size_t first, std::size_t count) {
-    const std::vector<double> old = gather([&](std::size_t p) -> const auto& { return pairs[p].vector; }, first, count);
+    const std::vector<double> old = gather(
+        [&](std::size_t p) -> const auto& { return pairs[p].vector; }, first, count);
     std::vector<double> b(old.size()), c(old.size());
     extended_times(base.matrix(), old.data(), b.data(), base.pool());
     extended_times(second, old.data(), c.data(), base.pool());
@@ -181,7 +187,8 @@ std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const S
         y[first + v][i] = (pair.coordinates[i] + c[i * kV + v] / pair.theta) / pair.norm;
       }
     }
-    std::vector<double> fresh = gather([&](std::size_t p) -> const auto& { return y[p]; }, first, count);
+    std::vector<double> fresh = gather(
+        [&](std::size_t p) -> const auto& { return y[p]; }, first, count);
     base.transposed_solve(fresh.data());
     extended_times(base.matrix(), fresh.data(), b.data(), base.pool());
     extended_times(second, fresh.data(), c.data(), base.pool());
@@ -196,7 +203,8 @@ std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const S
   std::vector<double> energy(k * k), work(k * k), energies(k), thetas(k);
   for (std::size_t p = 0; p < k; ++p) {
     for (std::size_t q = 0; q <= p; ++q) {
-      energy[p * k + q] = energy[q * k + p] = std::inner_product(x[p].begin(), x[p].end(), bx[q].begin(), 0.0);
+      energy[p * k + q] = energy[q * k + p] =
+          std::inner_product(x[p].begin(), x[p].end(), bx[q].begin(), 0.0);
       work[p * k + q] = work[q * k + p] = std::inner_product(x[p].begin(), x[p].end(), cx[q].begin(), 0.0);
     }
   }
@@ -222,7 +230,8 @@ std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const S
   for (std::size_t p = 0; p < k; ++p) {
     for (std::size_t q = 0; q < k; ++q) {
       double weight = 0;
-      for (std::size_t l = 0; l < k; ++l) weight += energy[l * k + q] / std::sqrt(energies[l]) * rotated[p * k + l];
+      for (std::size_t l = 0; l < k; ++l)
+        weight += energy[l * k + q] / std::sqrt(energies[l]) * rotated[p * k + l];
       for (std::size_t i = 0; i < rows; ++i) result[p][i] += weight * y[q][i];
     }
   }

@@ -1,4 +1,5 @@
-// Rigorous intervals for eigenvalues of C x = theta B x, B definite, from approximate vectors and their residuals.
+// Rigorous intervals for eigenvalues of C x = theta B x, B definite, from approximate vectors and their
+// residuals.
 #pragma once
 
 #include <vector>
@@ -7,38 +8,40 @@
 
 namespace stanchion {
 
-/// One approximate vector, held in the energy coordinates of the base, and what its residual shows: an eigenvalue lies
-/// within `radius` of `theta`.
+/// One approximate vector, held in the energy coordinates of the base, and what its residual shows: an
+/// eigenvalue lies within `radius` of `theta`.
 struct ResidualPair {
   double theta = 0, radius = 0;
-  double norm = 0;      ///< of the coordinates, so that x / norm has unit energy but for the base's relative error
-  double residual = 0;  ///< bound on the energy norm of the residual, for vectors of any norm
-  double length = 0;    ///< of x itself
+  double norm =
+      0;  ///< of the coordinates, so that x / norm has unit energy but for the base's relative error
+  double residual = 0;              ///< bound on the energy norm of the residual, for vectors of any norm
+  double length = 0;                ///< of x itself
   std::vector<double> coordinates;  ///< y of x = M^-T y
   std::vector<double> vector;       ///< x, in elimination order, of the scaled matrix
 };
 
-/// Pairs from `coordinates`, a block of approximate eigenvectors of M^-1 C M^-T (the first `count` columns; the others are
-/// not looked at). theta is the Rayleigh quotient. `second`: C. Products with the data are extended, every rounding is in
-/// the radius. Cost: two products and two passes over L.
+/// Pairs from `coordinates`, a block of approximate eigenvectors of M^-1 C M^-T (the first `count` columns;
+/// the others are not looked at). theta is the Rayleigh quotient. `second`: C. Products with the data are
+/// extended, every rounding is in the radius. Cost: two products and two passes over L.
 std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix& second,
                                          const std::vector<double>& coordinates, Index count);
 
-/// Better coordinates from `pairs`: one step of inverse iteration on the residual, Rayleigh and Ritz among them; the
-/// values of the pairs must be nonzero and the pairs those of the largest values in size. Cost: as residual_pairs, for
-/// every eight.
+/// Better coordinates from `pairs`: one step of inverse iteration on the residual, Rayleigh and Ritz among
+/// them; the values of the pairs must be nonzero and the pairs those of the largest values in size. Cost: as
+/// residual_pairs, for every eight.
 std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const ShiftedMatrix& second,
                                                      const std::vector<ResidualPair>& pairs);
 
 /// An interval that certainly holds at least `pairs.size()` eigenvalues, counted with multiplicity.
 struct EigenvalueGroup {
-  double low = 0, high = 0;         ///< of theta, low <= high
-  std::vector<std::size_t> pairs;   ///< numbers in the list given, by theta ascending
+  double low = 0, high = 0;        ///< of theta, low <= high
+  std::vector<std::size_t> pairs;  ///< numbers in the list given, by theta ascending
 };
 
-/// Groups with disjoint intervals, ascending, so that different groups hold different eigenvalues: pairs whose intervals
-/// overlap are taken together, by the theorem of Kahan on invariant subspaces. Pairs that show nothing (an infinite
-/// radius, or coordinates that depend on each other) are left out.
-std::vector<EigenvalueGroup> disjoint_groups(const DefiniteBase& base, const std::vector<ResidualPair>& pairs);
+/// Groups with disjoint intervals, ascending, so that different groups hold different eigenvalues: pairs
+/// whose intervals overlap are taken together, by the theorem of Kahan on invariant subspaces. Pairs that
+/// show nothing (an infinite radius, or coordinates that depend on each other) are left out.
+std::vector<EigenvalueGroup> disjoint_groups(const DefiniteBase& base,
+                                             const std::vector<ResidualPair>& pairs);
 
 }  // namespace stanchion

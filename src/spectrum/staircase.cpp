@@ -49,8 +49,8 @@ std::vector<Contradiction> Staircase::contradictions() const {
       const bool same_shift = facts_[lower.source].shift == facts_[upper.source].shift &&
                               lower.at == facts_[lower.source].shift && upper.at == lower.at;
       if ((lower.at < upper.at || same_shift) && lower.count > upper.count) {
-        found.push_back({facts_[lower.source].shift, facts_[upper.source].shift, static_cast<Index>(lower.count),
-                         static_cast<Index>(upper.count)});
+        found.push_back({facts_[lower.source].shift, facts_[upper.source].shift,
+                         static_cast<Index>(lower.count), static_cast<Index>(upper.count)});
       }
     }
   }

@@ -31,7 +31,8 @@ Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   constexpr Offset kDouble = sizeof(double);
   // The vector that detects faults: its sign, its product and the product's bound, a row.
   constexpr Offset kFaultProbe = 1 + 2 * kDouble;
-  forecast.peak_bytes_count = analysis.schedule.peak_doubles * kDouble + Offset{analysis.tree.rows} * kFaultProbe;
+  forecast.peak_bytes_count =
+      analysis.schedule.peak_doubles * kDouble + Offset{analysis.tree.rows} * kFaultProbe;
   forecast.peak_bytes_solve = forecast.peak_bytes_count + forecast.stored_factor_entries * kDouble;
   analysis.analyse_seconds = watch.seconds();
   return analysis;

@@ -1,4 +1,5 @@
-// Everything that depends on the pattern alone: made once, used for every shift and every matrix of the pattern.
+// Everything that depends on the pattern alone: made once, used for every shift and every matrix of the
+// pattern.
 #pragma once
 
 #include "order/ordering.hpp"
@@ -9,9 +10,9 @@ namespace stanchion {
 
 /// Sizes known before anything is factored.
 struct StructureForecast {
-  Offset factor_entries = 0;  ///< of L, diagonal included, without relaxation zeros
-  double factor_flops = 0;    ///< without relaxation zeros
-  double front_flops = 0;     ///< as executed, relaxation zeros included
+  Offset factor_entries = 0;         ///< of L, diagonal included, without relaxation zeros
+  double factor_flops = 0;           ///< without relaxation zeros
+  double front_flops = 0;            ///< as executed, relaxation zeros included
   Offset stored_factor_entries = 0;  ///< as kept in solve mode, relaxation zeros included
   Index largest_front = 0;
   Offset peak_bytes_count = 0;  ///< numeric phase, factor discarded
@@ -25,8 +26,8 @@ struct Analysis {
   double order_seconds = 0, analyse_seconds = 0;
 };
 
-/// Orders, counts, amalgamates and schedules. Errors: those of order_equations. Reproducible; the tree does not
-/// depend on `workers`, only the schedule does.
+/// Orders, counts, amalgamates and schedules. Errors: those of order_equations. Reproducible; the tree does
+/// not depend on `workers`, only the schedule does.
 Result<Analysis> analyse(const OrderingInput& input, int workers);
 
 }  // namespace stanchion

@@ -80,8 +80,8 @@ void number_equations(const Elimination& elimination, const SupernodeTree& super
 }
 
 /// The vertices below each front, merged from the graph and the children, as ascending positions.
-void list_rows(const Elimination& elimination, const SupernodeTree& supernodes, const std::vector<Index>& order,
-               const Buffer<Index>& first_of_vertex, AssemblyTree& tree) {
+void list_rows(const Elimination& elimination, const SupernodeTree& supernodes,
+               const std::vector<Index>& order, const Buffer<Index>& first_of_vertex, AssemblyTree& tree) {
   const Graph& graph = elimination.graph;
   std::vector<std::vector<Index>> below(static_cast<std::size_t>(tree.fronts));  // vertices
   std::vector<std::vector<Index>> children(static_cast<std::size_t>(tree.fronts));
@@ -104,7 +104,8 @@ void list_rows(const Elimination& elimination, const SupernodeTree& supernodes, 
       for (const Index v : below[static_cast<std::size_t>(child)]) add(v);
       std::vector<Index>().swap(below[static_cast<std::size_t>(child)]);
     }
-    std::sort(mine.begin(), mine.end(), [&](Index a, Index b) { return first_of_vertex[a] < first_of_vertex[b]; });
+    std::sort(mine.begin(), mine.end(),
+              [&](Index a, Index b) { return first_of_vertex[a] < first_of_vertex[b]; });
     for (const Index v : mine) {
       for (Index c = 0; c < graph.weight[v]; ++c) rows.push_back(first_of_vertex[v] + c);
     }
@@ -132,12 +133,14 @@ AssemblyTree build_assembly_tree(const Elimination& elimination, const Supernode
   tree.components = elimination.components;
   const std::vector<Index> order = processing_order(supernodes);
   std::vector<Index> rank(order.size());
-  for (std::size_t f = 0; f < order.size(); ++f) rank[static_cast<std::size_t>(order[f])] = static_cast<Index>(f);
+  for (std::size_t f = 0; f < order.size(); ++f)
+    rank[static_cast<std::size_t>(order[f])] = static_cast<Index>(f);
   for (Index f = 0; f < fronts; ++f) {
     const auto s = static_cast<std::size_t>(order[static_cast<std::size_t>(f)]);
     const Index up = supernodes.parent[s];
     tree.parent[f] = up < 0 ? -1 : rank[static_cast<std::size_t>(up)];
-    tree.component[f] = elimination.component_of_vertex[supernodes.vertex_at[supernodes.positions[s].front()]];
+    tree.component[f] =
+        elimination.component_of_vertex[supernodes.vertex_at[supernodes.positions[s].front()]];
   }
   Buffer<Index> first_of_vertex(elimination.graph.vertices);
   number_equations(elimination, supernodes, order, tree, first_of_vertex);

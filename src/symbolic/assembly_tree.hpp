@@ -14,17 +14,20 @@ namespace stanchion {
 struct AssemblyTree {
   Index rows = 0;
   Index fronts = 0;
-  Buffer<Index> position_of;   ///< equation -> elimination position
-  Buffer<Index> equation_at;   ///< its inverse
-  Buffer<Index> first_column;  ///< fronts + 1 positions: front f eliminates [first_column[f], first_column[f+1])
-  Buffer<Offset> row_start;    ///< fronts + 1 offsets into rows_below
-  Buffer<Index> rows_below;    ///< positions below the pivots, ascending
-  Buffer<Index> parent;        ///< front, -1 for a root
-  Buffer<Index> component;     ///< connected part of each front
+  Buffer<Index> position_of;  ///< equation -> elimination position
+  Buffer<Index> equation_at;  ///< its inverse
+  Buffer<Index>
+      first_column;  ///< fronts + 1 positions: front f eliminates [first_column[f], first_column[f+1])
+  Buffer<Offset> row_start;  ///< fronts + 1 offsets into rows_below
+  Buffer<Index> rows_below;  ///< positions below the pivots, ascending
+  Buffer<Index> parent;      ///< front, -1 for a root
+  Buffer<Index> component;   ///< connected part of each front
   Index components = 0;
 
   Index pivots(Index front) const { return first_column[Offset{front} + 1] - first_column[front]; }
-  Index below(Index front) const { return static_cast<Index>(row_start[Offset{front} + 1] - row_start[front]); }
+  Index below(Index front) const {
+    return static_cast<Index>(row_start[Offset{front} + 1] - row_start[front]);
+  }
   Index order(Index front) const { return pivots(front) + below(front); }
 };
 

@@ -22,7 +22,8 @@ struct TreeShape {
 
 TreeShape shape_of(const AssemblyTree& tree) {
   const auto count = static_cast<std::size_t>(tree.fronts);
-  TreeShape shape{std::vector<double>(count), std::vector<Index>(count), std::vector<std::vector<Index>>(count), {}};
+  TreeShape shape{
+      std::vector<double>(count), std::vector<Index>(count), std::vector<std::vector<Index>>(count), {}};
   for (Index f = 0; f < tree.fronts; ++f) {
     const auto i = static_cast<std::size_t>(f);
     const auto& mine = shape.children[i];
@@ -39,14 +40,20 @@ TreeShape shape_of(const AssemblyTree& tree) {
 }
 
 /// Blocks of an arena start on cache lines.
-Offset rounded_up(Offset doubles) { return (doubles + 7) / 8 * 8; }
-Offset front_doubles(const AssemblyTree& tree, Index f) { return rounded_up(front_layout(tree.order(f)).size()); }
-Offset result_doubles(const AssemblyTree& tree, Index f) { return rounded_up(contribution_doubles(tree.below(f))); }
+Offset rounded_up(Offset doubles) {
+  return (doubles + 7) / 8 * 8;
+}
+Offset front_doubles(const AssemblyTree& tree, Index f) {
+  return rounded_up(front_layout(tree.order(f)).size());
+}
+Offset result_doubles(const AssemblyTree& tree, Index f) {
+  return rounded_up(contribution_doubles(tree.below(f)));
+}
 
 /// High-water mark of a last-in-first-out stack over the fronts named, in order.
 /// `waiting`: zeros, one a front; zeros again afterwards.
-Offset stack_peak(const AssemblyTree& tree, const std::vector<Index>& fronts, const std::vector<char>& on_this_stack,
-                  std::vector<Offset>& waiting) {
+Offset stack_peak(const AssemblyTree& tree, const std::vector<Index>& fronts,
+                  const std::vector<char>& on_this_stack, std::vector<Offset>& waiting) {
   Offset top = 0, peak = 0;
   for (const Index f : fronts) {
     peak = std::max(peak, top + front_doubles(tree, f));
@@ -67,7 +74,8 @@ struct Waiting {
 
 Waiting waiting_for_fronts(const AssemblyTree& tree, const Schedule& schedule) {
   const auto fronts = static_cast<std::size_t>(tree.fronts);
-  Waiting waiting{std::vector<Offset>(fronts, 0), std::vector<Offset>(fronts, 0), std::vector<char>(fronts, 0)};
+  Waiting waiting{std::vector<Offset>(fronts, 0), std::vector<Offset>(fronts, 0),
+                  std::vector<char>(fronts, 0)};
   for (const Index f : schedule.shared_fronts) waiting.shared[static_cast<std::size_t>(f)] = 1;
   for (const Subtree& subtree : schedule.subtrees) {
     const Index up = tree.parent[subtree.end - 1];
@@ -87,15 +95,18 @@ Offset worker_doubles(const Schedule& schedule) {
   std::vector<Offset> arenas;
   for (const Subtree& subtree : schedule.subtrees) arenas.push_back(subtree.arena_doubles);
   const auto busy = std::min<std::size_t>(static_cast<std::size_t>(schedule.workers), arenas.size());
-  std::partial_sort(arenas.begin(), arenas.begin() + static_cast<std::ptrdiff_t>(busy), arenas.end(), std::greater<>());
+  std::partial_sort(arenas.begin(), arenas.begin() + static_cast<std::ptrdiff_t>(busy), arenas.end(),
+                    std::greater<>());
   Offset total = 0;
   for (std::size_t k = 0; k < busy; ++k) total += arenas[k] + schedule.panel_doubles;
   return total;
 }
 
-/// Bound on everything alive at once: the workers' stacks while a wave's subtrees run, waiting results, and the shared
-/// stack, which keeps its highest mark of a wave until the wave ends. `keep`: all stacks stay as they are to the end.
-Offset peak_of_waves(const AssemblyTree& tree, const Schedule& schedule, const std::vector<Wave>& waves, bool keep) {
+/// Bound on everything alive at once: the workers' stacks while a wave's subtrees run, waiting results, and
+/// the shared stack, which keeps its highest mark of a wave until the wave ends. `keep`: all stacks stay as
+/// they are to the end.
+Offset peak_of_waves(const AssemblyTree& tree, const Schedule& schedule, const std::vector<Wave>& waves,
+                     bool keep) {
   const Waiting waiting = waiting_for_fronts(tree, schedule);
   const Offset workers = worker_doubles(schedule), kept = keep ? workers : 0;
   Offset results = 0, top = 0, touched = 0, peak = 0;
@@ -135,8 +146,8 @@ std::vector<Wave> processing_waves(const Schedule& schedule) {
   return waves;
 }
 
-/// Memory below which time matters more, in doubles; the share of it that waves must save; and how much more of it
-/// stacks may take that are kept, since pages given back are cleared again when they return.
+/// Memory below which time matters more, in doubles; the share of it that waves must save; and how much more
+/// of it stacks may take that are kept, since pages given back are cleared again when they return.
 constexpr Offset kSmallPeak = Offset{100} << 17;
 constexpr double kWorthSaving = 0.85, kWorthKeeping = 1.25;
 
@@ -152,8 +163,8 @@ void choose_waves(const AssemblyTree& tree, Schedule& schedule) {
     }
   }
   const Offset kept = peak_of_waves(tree, schedule, schedule.waves, true);
-  schedule.keep_stacks = kept < kSmallPeak ||
-                         static_cast<double>(kept) <= kWorthKeeping * static_cast<double>(schedule.peak_doubles);
+  schedule.keep_stacks = kept < kSmallPeak || static_cast<double>(kept) <=
+                                                  kWorthKeeping * static_cast<double>(schedule.peak_doubles);
   if (schedule.keep_stacks) schedule.peak_doubles = kept;
 }
 
@@ -211,7 +222,8 @@ Schedule make_schedule(const AssemblyTree& tree, int workers) {
   }
   schedule.shared_arena_doubles = stack_peak(tree, schedule.shared_fronts, shared, waiting);
   // A worker's scratch: the panels of the widest front, and its map of all rows.
-  schedule.panel_doubles = eliminated_doubles(largest, widest) + eliminated_doubles(kFrontBlock, kTileWidth) + tree.rows / 2 + 1;
+  schedule.panel_doubles =
+      eliminated_doubles(largest, widest) + eliminated_doubles(kFrontBlock, kTileWidth) + tree.rows / 2 + 1;
   choose_waves(tree, schedule);
   return schedule;
 }

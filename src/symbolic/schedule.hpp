@@ -18,7 +18,8 @@ struct Subtree {
   Offset result_doubles = 0;  ///< the root's contribution block, kept until its parent is assembled
 };
 
-/// Subtrees that run side by side, then shared fronts that take their results in: half-open ranges of both lists.
+/// Subtrees that run side by side, then shared fronts that take their results in: half-open ranges of both
+/// lists.
 struct Wave {
   std::size_t first_subtree = 0, end_subtree = 0;
   std::size_t first_shared = 0, end_shared = 0;
@@ -26,19 +27,19 @@ struct Wave {
 
 struct Schedule {
   int workers = 1;
-  std::vector<Subtree> subtrees;    ///< in processing order
-  std::vector<Index> shared_fronts; ///< the rest, in processing order, each worked on by all
-  std::vector<Wave> waves;          ///< in the order they run; one wave balances best, many need less memory
-  bool keep_stacks = false;         ///< workers keep their memory from wave to wave: it need not be cleared again
+  std::vector<Subtree> subtrees;     ///< in processing order
+  std::vector<Index> shared_fronts;  ///< the rest, in processing order, each worked on by all
+  std::vector<Wave> waves;           ///< in the order they run; one wave balances best, many need less memory
+  bool keep_stacks = false;  ///< workers keep their memory from wave to wave: it need not be cleared again
   Offset worker_arena_doubles = 0;  ///< largest of the subtrees
   Offset shared_arena_doubles = 0;  ///< stack of the shared fronts
   Offset panel_doubles = 0;         ///< scratch of the largest front
   Offset peak_doubles = 0;          ///< bound on everything alive at once
 };
 
-/// Subtrees small enough to balance over `workers`; one worker gets one subtree per root. All subtrees run before the
-/// first shared front, unless waves in processing order, which keep few results waiting, save much memory.
-/// The arithmetic of every front is the same wherever it runs. Cost: linear in the fronts.
+/// Subtrees small enough to balance over `workers`; one worker gets one subtree per root. All subtrees run
+/// before the first shared front, unless waves in processing order, which keep few results waiting, save much
+/// memory. The arithmetic of every front is the same wherever it runs. Cost: linear in the fronts.
 Schedule make_schedule(const AssemblyTree& tree, int workers);
 
 /// Operations of one front with `pivots` of `order` rows eliminated.

@@ -50,8 +50,8 @@ Candidate merged(const Candidate& child, const Candidate& parent) {
 }
 
 bool worth_merging(const Candidate& front) {
-  const double entries =
-      static_cast<double>(front.pivots) * (static_cast<double>(front.rows) - 0.5 * static_cast<double>(front.pivots - 1));
+  const double entries = static_cast<double>(front.pivots) *
+                         (static_cast<double>(front.rows) - 0.5 * static_cast<double>(front.pivots - 1));
   return static_cast<double>(front.zeros) <= zero_share_allowed(front.pivots) * entries;
 }
 
@@ -94,7 +94,8 @@ std::vector<Index> amalgamate(Fundamental& tree) {
   std::vector<std::vector<Index>> children(count);
   for (std::size_t s = 0; s < count; ++s) {
     into[s] = static_cast<Index>(s);
-    if (tree.parent[s] >= 0) children[static_cast<std::size_t>(tree.parent[s])].push_back(static_cast<Index>(s));
+    if (tree.parent[s] >= 0)
+      children[static_cast<std::size_t>(tree.parent[s])].push_back(static_cast<Index>(s));
   }
   for (std::size_t s = 0; s < count; ++s) {
     auto& mine = children[s];
@@ -145,7 +146,8 @@ SupernodeTree build_supernodes(const Elimination& elimination) {
     for (Index k = tree.first[s]; k < tree.first[s + 1]; ++k) list.push_back(k);
     if (into[s] != static_cast<Index>(s)) continue;
     const Index up = tree.parent[s];
-    result.parent.push_back(up < 0 ? -1 : number[static_cast<std::size_t>(into[static_cast<std::size_t>(up)])]);
+    result.parent.push_back(up < 0 ? -1
+                                   : number[static_cast<std::size_t>(into[static_cast<std::size_t>(up)])]);
     result.pivots.push_back(tree.front[s].pivots);
     result.front_rows.push_back(tree.front[s].rows);
   }

@@ -46,7 +46,7 @@ void factor_once(const Analysis& analysis, const ShiftedMatrix& matrix, const Be
 /// The certified answer, with as many factorizations as it takes and by the method the program would choose.
 void certify(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchArguments& arguments,
              ThreadPool& pool, BenchRecord& record) {
-  constexpr double kRisk = 1e-6;                    // what the program allows a document by default
+  constexpr double kRisk = 1e-6;  // what the program allows a document by default
   constexpr Offset kMostFactor = Offset{8} << 30;
   RiskBudget risk(kRisk);
   CertifyOptions options;

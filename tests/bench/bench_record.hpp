@@ -17,7 +17,7 @@ struct BenchRecord {
   double order_seconds = 0;  ///< 0 where the program does not tell it from the analysis
   double analyse_seconds = 0;
   std::string level = "none", method;  ///< of the certificate; the peers and single factorizations have none
-  int factorizations = 1;  ///< that numeric_seconds covers
+  int factorizations = 1;              ///< that numeric_seconds covers
   double numeric_seconds = 0;
   double numeric_cpu_seconds = 0;  ///< user + system, all threads
   double whole_cpu_seconds = 0;    ///< likewise, of the whole repetition

@@ -89,7 +89,8 @@ struct StripsBench {
   StripsBench(const Kernels& set, Index rows, Index columns)
       : left_stride(set.row_strip * columns),
         right_stride(set.column_strip * columns),
-        left(random_values(static_cast<std::size_t>(rows + kMostRowStrip) * static_cast<std::size_t>(columns))),
+        left(random_values(static_cast<std::size_t>(rows + kMostRowStrip) *
+                           static_cast<std::size_t>(columns))),
         right(left) {}
 };
 
@@ -99,8 +100,8 @@ void subtract_product(benchmark::State& state, const Kernels& set) {
   const StripsBench bench(set, kRows, depth);
   std::vector<double> c(std::size_t{kRows} * kRows);
   for (auto _ : state) {
-    set.subtract_product(bench.left.data(), bench.left_stride, bench.right.data(), bench.right_stride, depth, kRows,
-                         kRows, kRows, 0, c.data(), kRows);
+    set.subtract_product(bench.left.data(), bench.left_stride, bench.right.data(), bench.right_stride, depth,
+                         kRows, kRows, kRows, 0, c.data(), kRows);
     benchmark::DoNotOptimize(c.data());
     benchmark::ClobberMemory();
   }
@@ -113,7 +114,8 @@ void multiply_by_upper(benchmark::State& state, const Kernels& set) {
   const auto a = random_values(static_cast<std::size_t>(rows) * kTileWidth);
   const std::vector<double> factor(std::size_t{kTileWidth} * kTileWidth, 0.5);
   for (auto _ : state) {
-    set.multiply_by_upper(a.data(), rows, rows, factor.data(), kTileWidth, bench.right.data(), bench.right_stride);
+    set.multiply_by_upper(a.data(), rows, rows, factor.data(), kTileWidth, bench.right.data(),
+                          bench.right_stride);
     benchmark::DoNotOptimize(bench.right.data());
     benchmark::ClobberMemory();
   }
@@ -153,8 +155,8 @@ void strips_growth_and_image(benchmark::State& state, const Kernels& set) {
   const std::vector<double> weight(kTileWidth, 1e-16);
   std::vector<double> growth(static_cast<std::size_t>(rows)), image(growth);
   for (auto _ : state) {
-    set.strips_growth_and_image(bench.left.data(), bench.left_stride, rows, kTileWidth, weight.data(), weight.data(),
-                                growth.data(), image.data());
+    set.strips_growth_and_image(bench.left.data(), bench.left_stride, rows, kTileWidth, weight.data(),
+                                weight.data(), growth.data(), image.data());
     benchmark::DoNotOptimize(growth.data());
     benchmark::ClobberMemory();
   }

@@ -103,8 +103,8 @@ TEST(SubtractProduct, EqualsExtendedPrecisionBelowTheDiagonalAndTouchesNothingOu
         const Strips left = left_of(set, a), right = right_of(set, b);
         const Index leading = rows + 2;
         std::vector<double> c(static_cast<std::size_t>(leading * columns + 1), kGuard);
-        set.subtract_product(left.value.data(), left.stride, right.value.data(), right.stride, depth, rows, columns,
-                             first_row, first_column, c.data(), leading);
+        set.subtract_product(left.value.data(), left.stride, right.value.data(), right.stride, depth, rows,
+                             columns, first_row, first_column, c.data(), leading);
         for (Index j = 0; j < columns; ++j) {
           for (Index i = 0; i < leading; ++i) {
             const double found = c[static_cast<std::size_t>(j * leading + i)];
@@ -141,8 +141,8 @@ TEST(SubtractProduct, FormsEverySumApart) {
         std::fill(b.value.begin(), b.value.end(), -1.0);
         const Strips left = left_of(*sets[s], a), right = right_of(*sets[s], b);
         std::vector<double> c(static_cast<std::size_t>(rows) * 9, 0x1p53);
-        sets[s]->subtract_product(left.value.data(), left.stride, right.value.data(), right.stride, depth, rows, 9, 100,
-                                  0, c.data(), rows);
+        sets[s]->subtract_product(left.value.data(), left.stride, right.value.data(), right.stride, depth,
+                                  rows, 9, 100, 0, c.data(), rows);
         for (const double entry : c) ASSERT_EQ(entry, 0x1p53 + 0.75 * depth) << sets[s]->isa;
       }
     }
@@ -245,13 +245,15 @@ TEST(DivideStrips, SolvesEveryRowAndSumsTheColumns) {
     Plain l(random, rows, columns, 2);
     std::fill(l.value.begin(), l.value.end(), kGuard);
     Strips left(set.row_strip, rows, columns), left_only = left;
-    std::vector<double> sum(static_cast<std::size_t>(columns), 10.0), signed_sum(sum.size(), -3.0), sign, ignored = sum;
+    std::vector<double> sum(static_cast<std::size_t>(columns), 10.0), signed_sum(sum.size(), -3.0), sign,
+        ignored = sum;
     for (Index i = 0; i < rows; ++i) sign.push_back(random() % 2 ? 1 : -1);
     const PivotArrays pivots{d.diagonal.data(), d.off_diagonal.data(), d.kind.data()};
-    set.divide_strips(packed.value.data(), packed.stride, rows, columns, pivots, sign.data(), left.value.data(),
-                      left.stride, l.value.data(), l.leading, sum.data(), signed_sum.data());
-    set.divide_strips(packed.value.data(), packed.stride, rows, columns, pivots, sign.data(), left_only.value.data(),
-                      left_only.stride, nullptr, 0, ignored.data(), ignored.data());
+    set.divide_strips(packed.value.data(), packed.stride, rows, columns, pivots, sign.data(),
+                      left.value.data(), left.stride, l.value.data(), l.leading, sum.data(),
+                      signed_sum.data());
+    set.divide_strips(packed.value.data(), packed.stride, rows, columns, pivots, sign.data(),
+                      left_only.value.data(), left_only.stride, nullptr, 0, ignored.data(), ignored.data());
     ASSERT_EQ(left.value, left_only.value);
     for (Index k = 0; k < columns; ++k) {
       const auto kk = static_cast<std::size_t>(k);
@@ -287,8 +289,8 @@ TEST(StripsGrowthAndImage, EqualsThePlainLoopToRounding) {
     const Plain a(random, rows, columns), weights(random, 1, columns), steps(random, 1, columns);
     const Strips left = left_of(set, a);
     std::vector<double> growth(static_cast<std::size_t>(rows) + 1, kGuard), image(growth);
-    set.strips_growth_and_image(left.value.data(), left.stride, rows, columns, weights.value.data(), steps.value.data(),
-                                growth.data(), image.data());
+    set.strips_growth_and_image(left.value.data(), left.stride, rows, columns, weights.value.data(),
+                                steps.value.data(), growth.data(), image.data());
     for (Index i = 0; i < rows; ++i) {
       double expected_growth = kGuard, expected_image = kGuard, size = std::fabs(kGuard);
       for (Index k = 0; k < columns; ++k) {

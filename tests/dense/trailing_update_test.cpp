@@ -42,8 +42,9 @@ Updated apply(const Update& shape, ThreadPool* team) {
   return u;
 }
 
-const std::vector<Update> kShapes = {{10, 0, 3},    {10, 4, 1},     {300, 100, 64},  {300, 192, 7}, {700, 200, 56},
-                                     {1100, 30, 20}, {450, 191, 33}, {900, 384, 192}, {64, 64, 5},   {50, 10, 0}};
+const std::vector<Update> kShapes = {{10, 0, 3},     {10, 4, 1},     {300, 100, 64}, {300, 192, 7},
+                                     {700, 200, 56}, {1100, 30, 20}, {450, 191, 33}, {900, 384, 192},
+                                     {64, 64, 5},    {50, 10, 0}};
 
 TEST(TrailingUpdate, TakesTheProductOutOfTheNamedColumnsOnly) {
   for (const Update& shape : kShapes) {

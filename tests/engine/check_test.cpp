@@ -37,19 +37,20 @@ TEST(Check, FreeChainHasOneZeroDirectionAtTheResolutionAndTheLastResortIsOffered
 }
 
 TEST(Check, ExtendedPrecisionTellsWhatDoubleCannot) {
-  // A free chain held by a spring of 2^-60: definite, smallest eigenvalue about 2^-60 / 40, far below double's reach
-  // in the entry 1 + 2^-60; so the spring is a row of its own, coupled exactly.
+  // A free chain held by a spring of 2^-60: definite, smallest eigenvalue about 2^-60 / 40, far below
+  // double's reach in the entry 1 + 2^-60; so the spring is a row of its own, coupled exactly.
   std::vector<Triplet> entries;
   const double soft = std::ldexp(1.0, -70);
-  for (Index i = 1; i < 40; ++i) entries.insert(entries.end(), {{i, i, 1}, {i - 1, i - 1, 1}, {i, i - 1, -1}});
+  for (Index i = 1; i < 40; ++i)
+    entries.insert(entries.end(), {{i, i, 1}, {i - 1, i - 1, 1}, {i, i - 1, -1}});
   ModelFiles files;
   Request request;
   request.input.stiffness = files.matrix("K.mtx", from_triplets(40, entries));
   request.input.added = {{files.matrix("S.mtx", diagonal([] {
-                            std::vector<double> d(40, 0.0);
-                            d[0] = 1;
-                            return d;
-                          }())),
+                                         std::vector<double> d(40, 0.0);
+                                         d[0] = 1;
+                                         return d;
+                                       }())),
                           soft}};
   const Outcome in_double = answer(run_check(request, {}));
   EXPECT_EQ(in_double.check->verdict, Verdict::kPositiveSemidefinite);
@@ -63,7 +64,8 @@ TEST(Check, ExtendedPrecisionTellsWhatDoubleCannot) {
 TEST(Check, DigitsWidenTheErrorUntilNothingIsCertain) {
   ModelFiles files;
   Request request;
-  request.input.stiffness = files.matrix("K.mtx", spring_chain(60, 2));  // lambda_min / lambda_max is about 7e-4
+  request.input.stiffness =
+      files.matrix("K.mtx", spring_chain(60, 2));  // lambda_min / lambda_max is about 7e-4
   request.digits = 12;
   EXPECT_EQ(*answer(run_check(request, {})).check->verdict_for_digits, Verdict::kPositiveDefinite);
   request.digits = 3;
@@ -86,11 +88,13 @@ TEST(Check, WitnessIsNegativeWhenEvaluatedAgain) {
   for (Index j = 0; j < matrix.rows; ++j) {
     for (Offset k = matrix.column_start[j]; k < matrix.column_start[Offset{j} + 1]; ++k) {
       const Index i = matrix.row[k];
-      form += (i == j ? 1.0L : 2.0L) * matrix.value[k] * x[static_cast<std::size_t>(i)] * x[static_cast<std::size_t>(j)];
+      form += (i == j ? 1.0L : 2.0L) * matrix.value[k] * x[static_cast<std::size_t>(i)] *
+              x[static_cast<std::size_t>(j)];
     }
   }
   EXPECT_LT(form, 0);
-  EXPECT_NEAR(static_cast<double>(form), outcome.check->witness->quadratic_form, outcome.check->witness->error_bound);
+  EXPECT_NEAR(static_cast<double>(form), outcome.check->witness->quadratic_form,
+              outcome.check->witness->error_bound);
 }
 
 TEST(Check, SameAnswerToTheLastBitForAnyNumberOfThreads) {

@@ -8,7 +8,9 @@ namespace {
 using namespace test;
 
 /// Fixed-fixed chain of n: 4 sin^2(k pi / (2 (n + 1))), k = 1..n (closed form).
-double chain_eigenvalue(Index n, Index k) { return 4 * std::pow(std::sin(k * M_PI / (2.0 * (n + 1))), 2); }
+double chain_eigenvalue(Index n, Index k) {
+  return 4 * std::pow(std::sin(k * M_PI / (2.0 * (n + 1))), 2);
+}
 
 Request chain_count(ModelFiles& files, Index n, std::vector<double> shifts) {
   Request request;
@@ -22,7 +24,8 @@ TEST(Count, EigenvaluesOfKBelowShifts) {
   const Index n = 60;
   std::vector<double> shifts;
   for (const Index k : {0, 1, 7, 30, 59, 60}) {
-    shifts.push_back(k == 60 ? 5 : (k == 0 ? 1e-4 : (chain_eigenvalue(n, k) + chain_eigenvalue(n, k + 1)) / 2));
+    shifts.push_back(k == 60 ? 5
+                             : (k == 0 ? 1e-4 : (chain_eigenvalue(n, k) + chain_eigenvalue(n, k + 1)) / 2));
   }
   const Outcome outcome = answer(run_count(chain_count(files, n, shifts), {}));
   const Index expected[] = {0, 1, 7, 30, 59, 60};
@@ -69,7 +72,8 @@ TEST(Count, CriticalFactorsOfAChainUnderItsOwnMatrix) {
   EXPECT_EQ(outcome.count->counts[1].below, below_one);
   EXPECT_EQ(outcome.count->counts[2].below, 0);
   bool convex = false;
-  for (const std::string& sentence : outcome.count->sentences) convex |= sentence.find("convexity") != std::string::npos;
+  for (const std::string& sentence : outcome.count->sentences)
+    convex |= sentence.find("convexity") != std::string::npos;
   EXPECT_TRUE(convex);
 }
 

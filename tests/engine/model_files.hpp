@@ -19,8 +19,9 @@ class ModelFiles {
  public:
   ModelFiles() {
     const auto* info = testing::UnitTest::GetInstance()->current_test_info();
-    folder_ = std::filesystem::temp_directory_path() /
-              (std::string("stanchion_") + info->test_suite_name() + "_" + info->name() + "_" + std::to_string(::getpid()));
+    folder_ =
+        std::filesystem::temp_directory_path() / (std::string("stanchion_") + info->test_suite_name() + "_" +
+                                                  info->name() + "_" + std::to_string(::getpid()));
     std::filesystem::create_directories(folder_);
   }
   ~ModelFiles() { std::filesystem::remove_all(folder_); }

@@ -44,8 +44,7 @@ void expect_survives(const std::function<Outcome()>& attempt, bool lasting, long
       }
       struck = allocator.struck();
     }
-    ASSERT_TRUE(outcome != Outcome::kThrew)
-        << "std::bad_alloc escaped when request " << k << " failed";
+    ASSERT_TRUE(outcome != Outcome::kThrew) << "std::bad_alloc escaped when request " << k << " failed";
     ASSERT_NE(outcome, Outcome::kWrongStatus) << "request " << k;
     ASSERT_EQ(test::live_allocations(), live_before) << "a leak when request " << k << " failed";
     refusals += outcome == Outcome::kRefused || outcome == Outcome::kThrew;

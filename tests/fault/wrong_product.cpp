@@ -68,7 +68,8 @@ void spoil_entry(double& entry, double term, std::uint64_t seed) {
       entry += 0x1p-30;
       break;
     case Wrong::kFlippedBit:
-      entry = std::bit_cast<double>(std::bit_cast<std::uint64_t>(entry) ^ (std::uint64_t{1} << draw(seed, 3, 64)));
+      entry = std::bit_cast<double>(std::bit_cast<std::uint64_t>(entry) ^
+                                    (std::uint64_t{1} << draw(seed, 3, 64)));
       break;
   }
 }
@@ -82,20 +83,22 @@ void spoil(const Product& product, std::uint64_t seed) {
 const Kernels* sound = nullptr;  // NOLINT: kernels are plain functions
 
 void spoiled_subtract_product(const double* left, Index left_stride, const double* right, Index right_stride,
-                              Index depth, Index rows, Index columns, Index first_row, Index first_column, double* c,
-                              Index leading) {
-  sound->subtract_product(left, left_stride, right, right_stride, depth, rows, columns, first_row, first_column, c,
-                          leading);
+                              Index depth, Index rows, Index columns, Index first_row, Index first_column,
+                              double* c, Index leading) {
+  sound->subtract_product(left, left_stride, right, right_stride, depth, rows, columns, first_row,
+                          first_column, c, leading);
   if (depth == 0 || columns <= first_column || !is_next()) return;
   const std::uint64_t seed = spoiler.seed + static_cast<std::uint64_t>(spoiler.calls);
   const auto j = first_column + static_cast<Index>(draw(seed, 1, columns - first_column));
   const Index top = std::max(0, j - first_row);
   if (top >= rows) return;
-  const Index i = top + static_cast<Index>(draw(seed, 0, rows - top)), p = static_cast<Index>(draw(seed, 2, depth));
+  const Index i = top + static_cast<Index>(draw(seed, 0, rows - top)),
+              p = static_cast<Index>(draw(seed, 2, depth));
   const auto at = [&](const double* packed, Index stride, Index strip, Index row) {
     return packed[Offset{row / strip} * stride + Offset{p} * strip + row % strip];
   };
-  const double term = at(left, left_stride, sound->row_strip, i) * at(right, right_stride, sound->column_strip, j);
+  const double term =
+      at(left, left_stride, sound->row_strip, i) * at(right, right_stride, sound->column_strip, j);
   spoil_entry(c[i + Offset{j} * leading], -term, seed);
 }
 

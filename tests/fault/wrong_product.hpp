@@ -1,5 +1,5 @@
-// Products that go wrong on request: a dgemm_ that takes the place of the library's in a test program, and a set
-// of kernels around the best of ours.
+// Products that go wrong on request: a dgemm_ that takes the place of the library's in a test program, and a
+// set of kernels around the best of ours.
 #pragma once
 
 #include <cstdint>

@@ -1,5 +1,6 @@
-// The property everything rests on: no statement at level proved is ever wrong, and statements at level statistical
-// are wrong no more often than their risk allows. Truth: exact integer arithmetic (fraction-free elimination).
+// The property everything rests on: no statement at level proved is ever wrong, and statements at level
+// statistical are wrong no more often than their risk allows. Truth: exact integer arithmetic (fraction-free
+// elimination).
 #include <gtest/gtest.h>
 
 #include <cmath>
@@ -32,12 +33,14 @@ Random cases_of(std::uint64_t test) {
   return Random(test + 1000003ULL * static_cast<std::uint64_t>(asked("STANCHION_CASES_FROM", 0)));
 }
 
-/// A random dyadic symmetric matrix, often singular or nearly so, on purpose: small integers, rank-deficient sums,
-/// glued copies, penalty springs of 2^k, pivots of 2^-k.
+/// A random dyadic symmetric matrix, often singular or nearly so, on purpose: small integers, rank-deficient
+/// sums, glued copies, penalty springs of 2^k, pivots of 2^-k.
 SymmetricMatrix trouble(Random& random, int number) {
   const auto n = static_cast<Index>(2 + random() % 14);
   std::vector<Triplet> entries;
-  const auto integer = [&](int size) { return static_cast<double>(static_cast<int>(random() % (2 * size + 1)) - size); };
+  const auto integer = [&](int size) {
+    return static_cast<double>(static_cast<int>(random() % (2 * size + 1)) - size);
+  };
   switch (number % 6) {
     case 0:  // small integers, sparse
       for (Index i = 0; i < n; ++i) {
@@ -72,7 +75,8 @@ SymmetricMatrix trouble(Random& random, int number) {
     case 3:  // zero or tiny leading diagonals
       for (Index i = 0; i < n; ++i) {
         for (Index j = 0; j < i; ++j) entries.push_back({i, j, integer(3)});
-        entries.push_back({i, i, random() % 2 == 0 ? 0.0 : std::ldexp(1.0, -static_cast<int>(random() % 50))});
+        entries.push_back(
+            {i, i, random() % 2 == 0 ? 0.0 : std::ldexp(1.0, -static_cast<int>(random() % 50))});
       }
       break;
     case 4: {  // saddle points with repeated constraints
@@ -85,7 +89,8 @@ SymmetricMatrix trouble(Random& random, int number) {
       break;
     }
     default: {  // singular by construction, then moved by one unit of 2^-k: eigenvalues next to zero
-      for (Index i = 1; i < n; ++i) entries.insert(entries.end(), {{i, i, 2}, {i - 1, i - 1, 2}, {i, i - 1, -2}});
+      for (Index i = 1; i < n; ++i)
+        entries.insert(entries.end(), {{i, i, 2}, {i - 1, i - 1, 2}, {i, i - 1, -2}});
       const double move = std::ldexp(random() % 2 == 0 ? 1.0 : -1.0, -static_cast<int>(random() % 60));
       entries.push_back({n / 2, n / 2, move});
       break;
@@ -108,7 +113,8 @@ bool right(const CertifiedInertia& found, const test::ExactInertia& truth) {
   const Inertia& inertia = found.inertia;
   if (found.certificate.level == Level::kNone) return true;
   return inertia.negative <= truth.negative && inertia.positive <= truth.positive &&
-         inertia.negative + inertia.zero >= truth.negative && inertia.positive + inertia.zero >= truth.positive;
+         inertia.negative + inertia.zero >= truth.negative &&
+         inertia.positive + inertia.zero >= truth.positive;
 }
 
 TEST(CertificateProperty, NoWrongStatementAtLevelProved) {
@@ -124,9 +130,9 @@ TEST(CertificateProperty, NoWrongStatementAtLevelProved) {
     ASSERT_TRUE(found.ok()) << found.status().to_string();
     if (!right(*found, truth)) {
       ++wrong;
-      ADD_FAILURE() << "case " << number << ": proved " << found->inertia.negative << " " << found->inertia.zero << " "
-                    << found->inertia.positive << ", exactly " << truth.negative << " " << truth.zero << " "
-                    << truth.positive;
+      ADD_FAILURE() << "case " << number << ": proved " << found->inertia.negative << " "
+                    << found->inertia.zero << " " << found->inertia.positive << ", exactly " << truth.negative
+                    << " " << truth.zero << " " << truth.positive;
     }
     if (truth.zero == 0) {
       ++clear;
@@ -139,7 +145,8 @@ TEST(CertificateProperty, NoWrongStatementAtLevelProved) {
 }
 
 TEST(CertificateProperty, StatisticalStatementsAreWrongNoMoreOftenThanTheirRisk) {
-  // At risk 0.01 a document, wrong statements among N may exceed N * 0.01 by no more than five standard deviations.
+  // At risk 0.01 a document, wrong statements among N may exceed N * 0.01 by no more than five standard
+  // deviations.
   Random random = cases_of(7);
   int wrong = 0, certified = 0, nonsingular = 0;
   for (int number = 0; number < cases(); ++number) {
@@ -150,7 +157,8 @@ TEST(CertificateProperty, StatisticalStatementsAreWrongNoMoreOftenThanTheirRisk)
     options.keep_factor = true;
     const Factorization f = prepared.factor(0, options);
     RiskBudget risk(0.01);
-    const auto test = certify_relative(prepared.analysis, prepared.shifted(0), f, risk, random(), *prepared.pool);
+    const auto test =
+        certify_relative(prepared.analysis, prepared.shifted(0), f, risk, random(), *prepared.pool);
     ASSERT_TRUE(test.ok());
     nonsingular += truth.zero == 0;
     if (!test->certified) continue;

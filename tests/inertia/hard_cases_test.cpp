@@ -13,7 +13,8 @@ namespace {
 
 using test::prepare;
 
-CertifiedInertia certify(const test::Prepared& prepared, bool definite_first = false, std::uint64_t seed = 1) {
+CertifiedInertia certify(const test::Prepared& prepared, bool definite_first = false,
+                         std::uint64_t seed = 1) {
   RiskBudget risk(1e-6);
   CertifyOptions options;
   options.risk = &risk;
@@ -32,8 +33,8 @@ bool allows(const CertifiedInertia& found, Index negative, Index rows) {
          found.inertia.negative + found.inertia.zero + found.inertia.positive == rows;
 }
 
-/// Springs in a row, held at one end; `stiffness(i)` of the link between i - 1 and i. Whole numbers only: with one end
-/// free it is exactly singular, yet elimination rounds and leaves a last pivot of noise.
+/// Springs in a row, held at one end; `stiffness(i)` of the link between i - 1 and i. Whole numbers only:
+/// with one end free it is exactly singular, yet elimination rounds and leaves a last pivot of noise.
 template <class Stiffness>
 SymmetricMatrix chain(Index n, double held, const Stiffness& stiffness) {
   std::vector<Triplet> entries{{0, 0, held}};
@@ -45,8 +46,9 @@ SymmetricMatrix chain(Index n, double held, const Stiffness& stiffness) {
 }
 
 TEST(HardCases, RetryingUntilItPassesDoesNotInflateTheRisk) {
-  // An exactly singular matrix must not be certified; chance lets single attempts through. However often a document
-  // tries again, the share of documents that get through stays below the risk (certificate by Bonferroni's bound).
+  // An exactly singular matrix must not be certified; chance lets single attempts through. However often a
+  // document tries again, the share of documents that get through stays below the risk (certificate by
+  // Bonferroni's bound).
   constexpr int kDocuments = 400, kAttempts = 12;
   constexpr double kRisk = 0.3;
   const auto prepared = prepare(chain(9, 0, [](Index i) { return 3.0 + (i * 5) % 7; }));
@@ -102,8 +104,9 @@ TEST(HardCases, AColumnOfAHundredThousandElementsIsNotCertifiedInDouble) {
 }
 
 TEST(HardCases, GluedChainsHaveTheirPairsToldApartOrLeftOpen) {
-  // Two equal fixed-fixed chains, mass points joined one by one by springs of stiffness e / 2 taken off the diagonal:
-  // [A e I; e I A] has eigenvalues lambda_k -+ e (closed form), lambda_k = 4 sin^2(k pi / (2 (n + 1))).
+  // Two equal fixed-fixed chains, mass points joined one by one by springs of stiffness e / 2 taken off the
+  // diagonal: [A e I; e I A] has eigenvalues lambda_k -+ e (closed form), lambda_k = 4 sin^2(k pi / (2 (n +
+  // 1))).
   const Index n = 40;
   for (int power = 4; power <= 12; ++power) {
     const double glue = std::pow(10.0, -power);
@@ -136,7 +139,11 @@ TEST(HardCases, WilkinsonsClosePairIsToldApartOrLeftOpen) {
       entries.push_back({i, i, std::fabs(10.0 - i) - shift});
       if (i > 0) entries.push_back({i, i - 1, 1});
     }
-    const Index below = shift > 10.7461941829034 ? 21 : shift > 10.74619418290335 ? 20 : shift > 10 ? 19 : shift > 0 ? 1 : 1;
+    const Index below = shift > 10.7461941829034    ? 21
+                        : shift > 10.74619418290335 ? 20
+                        : shift > 10                ? 19
+                        : shift > 0                 ? 1
+                                                    : 1;
     EXPECT_TRUE(allows(certify(prepare(from_triplets(21, entries))), below, 21)) << shift;
   }
 }
@@ -152,7 +159,8 @@ TEST(HardCases, SinglePrecisionStorageCertifiesItselfOrNothing) {
     const Factorization in_single = prepared.factor(0, options);
     EXPECT_EQ(in_single.signs.negative, in_double.signs.negative);
     RiskBudget risk(1e-6);
-    const auto result = certify_relative(prepared.analysis, prepared.shifted(0), in_single, risk, 3, *prepared.pool);
+    const auto result =
+        certify_relative(prepared.analysis, prepared.shifted(0), in_single, risk, 3, *prepared.pool);
     ASSERT_TRUE(result.ok());
     EXPECT_TRUE(result->certified) << result->relative_bound;
     EXPECT_EQ(result->negative, in_double.signs.negative);
@@ -161,7 +169,8 @@ TEST(HardCases, SinglePrecisionStorageCertifiesItselfOrNothing) {
 }
 
 TEST(HardCases, ExclusionRadiusHoldsNoEigenvalue) {
-  // A - s I for the chain: the nearest closed-form eigenvalue is farther than the radius, and not absurdly so.
+  // A - s I for the chain: the nearest closed-form eigenvalue is farther than the radius, and not absurdly
+  // so.
   const Index n = 30;
   const SymmetricMatrix stiffness = chain(n, 1, [](Index) { return 1.0; });
   std::vector<Triplet> ones;
@@ -182,7 +191,8 @@ TEST(HardCases, ExclusionRadiusHoldsNoEigenvalue) {
     ASSERT_TRUE(result.ok() && result->certified);
     double nearest = 10;  // fixed-free chain: 4 sin^2((2k - 1) pi / (2 (2n + 1))) (closed form)
     for (Index k = 1; k <= n; ++k) {
-      nearest = std::min(nearest, std::fabs(4 * std::pow(std::sin((2 * k - 1) * M_PI / (2.0 * (2 * n + 1))), 2) - shift));
+      nearest = std::min(
+          nearest, std::fabs(4 * std::pow(std::sin((2 * k - 1) * M_PI / (2.0 * (2 * n + 1))), 2) - shift));
     }
     EXPECT_GT(result->exclusion_radius, nearest / 1000);
     EXPECT_LT(result->exclusion_radius, nearest);

@@ -27,8 +27,8 @@ RelativeResult relative(const test::Prepared& prepared, double risk = 1e-6, std:
   return *result;
 }
 
-/// A chain of springs with `links` links of stiffness `weak` and the rest 1, held at one end: definite, and its
-/// smallest eigenvalue is about weak / n.
+/// A chain of springs with `links` links of stiffness `weak` and the rest 1, held at one end: definite, and
+/// its smallest eigenvalue is about weak / n.
 SymmetricMatrix chain(Index n, double weak) {
   std::vector<Triplet> entries{{0, 0, 1}};
   for (Index i = 1; i < n; ++i) {
@@ -71,7 +71,8 @@ TEST(Relative, TellsASpringJustBeyondCritical) {
 TEST(Relative, NeverCertifiesASingularMatrix) {
   // Integer matrices: a free chain (nullity 1) and Laplacians at closed-form eigenvalues that are integers.
   std::vector<Triplet> entries;
-  for (Index i = 1; i < 400; ++i) entries.insert(entries.end(), {{i, i, 3}, {i - 1, i - 1, 3}, {i, i - 1, -3}});
+  for (Index i = 1; i < 400; ++i)
+    entries.insert(entries.end(), {{i, i, 3}, {i - 1, i - 1, 3}, {i, i - 1, -3}});
   const SymmetricMatrix free_chain = from_triplets(400, entries);
   for (std::uint64_t seed = 1; seed <= 50; ++seed) {
     EXPECT_FALSE(relative(prepare(free_chain), 1e-6, seed).certified) << seed;
@@ -82,7 +83,8 @@ TEST(Relative, NeverCertifiesASingularMatrix) {
 TEST(Relative, SameBitsForAnyNumberOfThreads) {
   const SymmetricMatrix matrix = laplacian(24, 23, 22, 1.7);
   const auto one = relative(prepare(matrix, 1));
-  for (const int threads : {2, 3}) EXPECT_EQ(relative(prepare(matrix, threads)).relative_bound, one.relative_bound);
+  for (const int threads : {2, 3})
+    EXPECT_EQ(relative(prepare(matrix, threads)).relative_bound, one.relative_bound);
 }
 
 TEST(Relative, ReportedBoundIsAboveTheTrueNorm) {

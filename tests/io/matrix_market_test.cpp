@@ -48,8 +48,8 @@ TEST(MatrixMarket, RefusesOtherKindsByName) {
 
 TEST(MatrixMarket, AMisspeltHeaderIsNotReadAsTriplets) {
   const std::string body = " matrix coordinate real symmetric\n2 2 2\n1 1 4\n2 2 5\n";
-  for (const char* start : {"%MatrixMarket", "%% MatrixMarket", " %%MatrixMarket", "MatrixMarket", "#MatrixMarket",
-                            "%%%matrixmarket"}) {
+  for (const char* start : {"%MatrixMarket", "%% MatrixMarket", " %%MatrixMarket", "MatrixMarket",
+                            "#MatrixMarket", "%%%matrixmarket"}) {
     expect_refused(start + body, "bad-header", "k.mtx:1");
   }
   expect_refused("% a comment first\n%%MatrixMarket" + body, "bad-header", "k.mtx:2");

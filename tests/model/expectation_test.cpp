@@ -54,8 +54,9 @@ TEST(Expectation, BracketsAndAuditsHaveOneEach) {
 }
 
 TEST(Expectation, RefusesAnythingElse) {
-  for (const char* text : {"", "zero", "zero:", "zero:-1", "zero:6x", "zero: 6", "negative:99999999999",
-                           "positive-definite:1", "Positive-Definite", "none-below:1", "complete:", "none below", "zero:1.5"}) {
+  for (const char* text :
+       {"", "zero", "zero:", "zero:-1", "zero:6x", "zero: 6", "negative:99999999999", "positive-definite:1",
+        "Positive-Definite", "none-below:1", "complete:", "none below", "zero:1.5"}) {
     const auto parsed = parse_expectation(text);
     ASSERT_FALSE(parsed.ok()) << text;
     EXPECT_EQ(parsed.status().code(), "bad-expectation");

@@ -15,7 +15,9 @@ using test::laplacian;
 using test::prepare;
 using test::Random;
 
-std::array<Offset, 3> signs(const Factorization& f) { return {f.signs.negative, f.signs.zero, f.signs.positive}; }
+std::array<Offset, 3> signs(const Factorization& f) {
+  return {f.signs.negative, f.signs.zero, f.signs.positive};
+}
 
 /// Inertia by dense eigenvalues of the scaled, shifted matrix; fails when one is too close to zero to tell.
 std::array<Offset, 3> dense_signs(const SymmetricMatrix& matrix) {
@@ -41,10 +43,14 @@ double dense_backward_error(const test::Prepared& prepared, const Factorization&
         const long double d = l == k ? front.diagonal[k] : front.off_diagonal[k];
         for (Index i = 0; i < front.order; ++i) {
           for (Index j = 0; j < front.order; ++j) {
-            const long double a = front.lower[Offset{k} * front.order + i], b = front.lower[Offset{l} * front.order + j];
-            const auto at = static_cast<std::size_t>(front.position[i]) + static_cast<std::size_t>(front.position[j]) * nn;
+            const long double a = front.lower[Offset{k} * front.order + i],
+                              b = front.lower[Offset{l} * front.order + j];
+            const auto at = static_cast<std::size_t>(front.position[i]) +
+                            static_cast<std::size_t>(front.position[j]) * nn;
             rebuilt[at] += a * d * b;
-            if (l > k) rebuilt[static_cast<std::size_t>(front.position[j]) + static_cast<std::size_t>(front.position[i]) * nn] += a * d * b;
+            if (l > k)
+              rebuilt[static_cast<std::size_t>(front.position[j]) +
+                      static_cast<std::size_t>(front.position[i]) * nn] += a * d * b;
           }
         }
       }
@@ -93,9 +99,12 @@ TEST(Factorize, RandomMatricesMatchDenseEigenvaluesAndTheBoundHolds) {
     const double actual = dense_backward_error(prepared, f);
     EXPECT_LE(actual, f.error_bound + 1e-17) << "n " << n;
     const auto values = test::eigenvalues(matrix);
-    const double margin = f.error_bound + 1e-13 * std::max(std::fabs(values.front()), std::fabs(values.back()));
-    const auto surely_negative = std::count_if(values.begin(), values.end(), [&](double v) { return v < -margin; });
-    const auto surely_positive = std::count_if(values.begin(), values.end(), [&](double v) { return v > margin; });
+    const double margin =
+        f.error_bound + 1e-13 * std::max(std::fabs(values.front()), std::fabs(values.back()));
+    const auto surely_negative =
+        std::count_if(values.begin(), values.end(), [&](double v) { return v < -margin; });
+    const auto surely_positive =
+        std::count_if(values.begin(), values.end(), [&](double v) { return v > margin; });
     EXPECT_GE(f.signs.negative + f.signs.zero, surely_negative);
     EXPECT_GE(f.signs.positive + f.signs.zero, surely_positive);
     EXPECT_EQ(f.signs.negative + f.signs.zero + f.signs.positive, n);

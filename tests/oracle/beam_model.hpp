@@ -14,13 +14,14 @@ struct BeamDof {
   double sign = 1;
 };
 
-/// EI = 1; cubic shape functions (Przemieniecki, Theory of Matrix Structural Analysis, 1968, ch. 5, 12, 15; from memory).
+/// EI = 1; cubic shape functions (Przemieniecki, Theory of Matrix Structural Analysis, 1968, ch. 5, 12, 15;
+/// from memory).
 class BeamModel {
  public:
   explicit BeamModel(Index equations) : equations_(equations) {}
 
-  /// An element of length h between (w1, theta1) and (w2, theta2); `force`: compression at factor 1; `foundation`: per
-  /// length and deflection; `mass`: per length.
+  /// An element of length h between (w1, theta1) and (w2, theta2); `force`: compression at factor 1;
+  /// `foundation`: per length and deflection; `mass`: per length.
   void add(const std::array<BeamDof, 4>& dofs, double h, double force, double foundation, double mass) {
     const double k = 1 / (h * h * h);
     const double bending[4][4] = {{12 * k, 6 * k * h, -12 * k, 6 * k * h},
@@ -82,17 +83,20 @@ inline BeamModel straight_member(Index elements, EndSupport low, EndSupport high
   return model;
 }
 
-/// A portal of two columns and a beam, all of length 1 and stiffness 1, without axial deformation; each column carries the
-/// factor. `fixed`: bases held against rotation. The tops sway together; the beam bends between them.
+/// A portal of two columns and a beam, all of length 1 and stiffness 1, without axial deformation; each
+/// column carries the factor. `fixed`: bases held against rotation. The tops sway together; the beam bends
+/// between them.
 inline BeamModel portal(Index elements, bool fixed) {
   const Index inner = 2 * (elements - 1);  // equations inside a member
   const Index base = fixed ? 0 : 1;
   // Sway, rotations of the two joints, then the members one after the other.
-  const Index first_column = 3, second_column = first_column + inner + base, beam = second_column + inner + base;
+  const Index first_column = 3, second_column = first_column + inner + base,
+              beam = second_column + inner + base;
   BeamModel model(beam + inner);
   const auto column = [&](Index first, Index joint) {
     std::vector<std::array<BeamDof, 2>> nodes{{BeamDof{-1}, BeamDof{fixed ? -1 : first + inner}}};
-    for (Index k = 0; k + 1 < elements; ++k) nodes.push_back({BeamDof{first + 2 * k}, BeamDof{first + 2 * k + 1}});
+    for (Index k = 0; k + 1 < elements; ++k)
+      nodes.push_back({BeamDof{first + 2 * k}, BeamDof{first + 2 * k + 1}});
     nodes.push_back({BeamDof{0}, BeamDof{joint}});
     for (std::size_t e = 0; e + 1 < nodes.size(); ++e) {
       model.add({nodes[e][0], nodes[e][1], nodes[e + 1][0], nodes[e + 1][1]}, 1.0 / elements, 1, 0, 0);
@@ -102,7 +106,8 @@ inline BeamModel portal(Index elements, bool fixed) {
   column(second_column, 2);
   // A joint that turns the column's top by dw/dz turns the beam by dv/dx of the opposite sign.
   std::vector<std::array<BeamDof, 2>> nodes{{BeamDof{-1}, BeamDof{1, -1}}};
-  for (Index k = 0; k + 1 < elements; ++k) nodes.push_back({BeamDof{beam + 2 * k}, BeamDof{beam + 2 * k + 1}});
+  for (Index k = 0; k + 1 < elements; ++k)
+    nodes.push_back({BeamDof{beam + 2 * k}, BeamDof{beam + 2 * k + 1}});
   nodes.push_back({BeamDof{-1}, BeamDof{2, -1}});
   for (std::size_t e = 0; e + 1 < nodes.size(); ++e) {
     model.add({nodes[e][0], nodes[e][1], nodes[e + 1][0], nodes[e + 1][1]}, 1.0 / elements, 0, 0, 0);

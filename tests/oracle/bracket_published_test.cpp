@@ -1,8 +1,8 @@
-// Brackets against published critical loads and frequencies: published.json of the shared data, whose values are Euler
-// columns, columns on elastic foundation (Hetenyi, Beams on Elastic Foundation, 1946), portals (Timoshenko and Gere, Theory
-// of Elastic Stability, 1961), plates (Timoshenko and Gere; Leissa, Vibration of Plates, 1969) recomputed from their
-// equations; the file names its sources. A mesh converges: its error must fall, by the order of the element, not only
-// be small.
+// Brackets against published critical loads and frequencies: published.json of the shared data, whose values
+// are Euler columns, columns on elastic foundation (Hetenyi, Beams on Elastic Foundation, 1946), portals
+// (Timoshenko and Gere, Theory of Elastic Stability, 1961), plates (Timoshenko and Gere; Leissa, Vibration of
+// Plates, 1969) recomputed from their equations; the file names its sources. A mesh converges: its error must
+// fall, by the order of the element, not only be small.
 #include <cmath>
 #include <fstream>
 #include <nlohmann/json.hpp>
@@ -19,14 +19,18 @@ namespace {
 using namespace test;
 
 const nlohmann::json& published() {
-  static const nlohmann::json file = nlohmann::json::parse(std::ifstream(STANCHION_SHARED_DATA "/published.json"));
+  static const nlohmann::json file =
+      nlohmann::json::parse(std::ifstream(STANCHION_SHARED_DATA "/published.json"));
   return file;
 }
 
-double real(const nlohmann::json& value) { return value.is_string() ? std::stod(value.get<std::string>()) : value.get<double>(); }
+double real(const nlohmann::json& value) {
+  return value.is_string() ? std::stod(value.get<std::string>()) : value.get<double>();
+}
 
 /// The first `many` values of K + f G, or of K - s M.
-std::vector<CriticalValue> first_values(const SymmetricMatrix& stiffness, const SymmetricMatrix& second, bool mass, Index many) {
+std::vector<CriticalValue> first_values(const SymmetricMatrix& stiffness, const SymmetricMatrix& second,
+                                        bool mass, Index many) {
   ModelFiles files;
   Request request;
   request.input.stiffness = files.matrix("K.mtx", stiffness);
@@ -58,8 +62,9 @@ TEST_F(Published, EulerColumnsForAllSixEndConditions) {
   const auto& euler = published()["closed_form"]["euler_P_L2_over_EI"];
   const EndSupport kFixed{true, true}, kPinned{true, false}, kFree{false, false}, kGuided{false, true};
   const std::tuple<const char*, EndSupport, EndSupport> cases[] = {
-      {"fixed-free", kFixed, kFree},       {"pinned-pinned", kPinned, kPinned}, {"fixed-pinned", kFixed, kPinned},
-      {"fixed-fixed", kFixed, kFixed},     {"fixed-guided", kFixed, kGuided},   {"pinned-guided", kPinned, kGuided}};
+      {"fixed-free", kFixed, kFree},     {"pinned-pinned", kPinned, kPinned},
+      {"fixed-pinned", kFixed, kPinned}, {"fixed-fixed", kFixed, kFixed},
+      {"fixed-guided", kFixed, kGuided}, {"pinned-guided", kPinned, kGuided}};
   for (const auto& [name, low, high] : cases) {
     SCOPED_TRACE(name);
     double found[2];
@@ -74,18 +79,22 @@ TEST_F(Published, EulerColumnsForAllSixEndConditions) {
 TEST_F(Published, HigherLoadsOfColumns) {
   const auto& closed = published()["closed_form"];
   const EndSupport kFixed{true, true}, kPinned{true, false};
-  for (const auto& [name, high] : {std::pair{"euler_fixed_fixed_first3", kFixed}, std::pair{"euler_fixed_pinned_first2", kPinned}}) {
+  for (const auto& [name, high] :
+       {std::pair{"euler_fixed_fixed_first3", kFixed}, std::pair{"euler_fixed_pinned_first2", kPinned}}) {
     const BeamModel column = straight_member(60, kFixed, high, 0);
     const auto& exact = closed[name];
-    const auto found = first_values(column.stiffness(), column.geometric(), false, static_cast<Index>(exact.size()));
+    const auto found =
+        first_values(column.stiffness(), column.geometric(), false, static_cast<Index>(exact.size()));
     ASSERT_EQ(found.size(), exact.size());
-    for (std::size_t k = 0; k < exact.size(); ++k) EXPECT_NEAR(found[k].value / real(exact[k]), 1, 1e-5) << name;
+    for (std::size_t k = 0; k < exact.size(); ++k)
+      EXPECT_NEAR(found[k].value / real(exact[k]), 1, 1e-5) << name;
   }
 }
 
 TEST_F(Published, ColumnsOnElasticFoundation) {
   const EndSupport kPinned{true, false};
-  for (const auto& [key, exact] : published()["closed_form"]["beam_on_elastic_foundation_pinned_P_L2_over_EI"].items()) {
+  for (const auto& [key, exact] :
+       published()["closed_form"]["beam_on_elastic_foundation_pinned_P_L2_over_EI"].items()) {
     SCOPED_TRACE("foundation " + key);
     double found[2];
     for (const Index elements : {10, 20}) {
@@ -114,8 +123,10 @@ TEST_F(Published, FrequenciesOfBeams) {
   const auto& closed = published()["closed_form"]["beam_beta_L"];
   const EndSupport kFixed{true, true}, kPinned{true, false}, kFree{false, false};
   const std::tuple<const char*, EndSupport, EndSupport, Index> cases[] = {
-      {"clamped-clamped = free-free", kFixed, kFixed, 0}, {"clamped-clamped = free-free", kFree, kFree, 2},
-      {"cantilever", kFixed, kFree, 0},                   {"clamped-pinned", kFixed, kPinned, 0},
+      {"clamped-clamped = free-free", kFixed, kFixed, 0},
+      {"clamped-clamped = free-free", kFree, kFree, 2},
+      {"cantilever", kFixed, kFree, 0},
+      {"clamped-pinned", kFixed, kPinned, 0},
       {"pinned", kPinned, kPinned, 0}};
   for (const auto& [name, low, high, rigid] : cases) {
     SCOPED_TRACE(testing::Message() << name << ", rigid motions " << rigid);
@@ -127,12 +138,15 @@ TEST_F(Published, FrequenciesOfBeams) {
       found.erase(found.begin());
     }
     ASSERT_EQ(found.size(), 3u);
-    for (std::size_t k = 0; k < 3; ++k) EXPECT_NEAR(std::sqrt(std::sqrt(found[k].value)) / real(closed[name][k]), 1, 2e-5);
+    for (std::size_t k = 0; k < 3; ++k)
+      EXPECT_NEAR(std::sqrt(std::sqrt(found[k].value)) / real(closed[name][k]), 1, 2e-5);
   }
 }
 
-/// Values of a plate specimen in the usual dimensionless form: k = N b^2 / (pi^2 D), or omega a^2 sqrt(rho h / D).
-std::vector<double> plate_values(PlateLoad load, PlateEdges edges, double aspect, Offset unknowns, bool mass, Index many) {
+/// Values of a plate specimen in the usual dimensionless form: k = N b^2 / (pi^2 D), or omega a^2 sqrt(rho h
+/// / D).
+std::vector<double> plate_values(PlateLoad load, PlateEdges edges, double aspect, Offset unknowns, bool mass,
+                                 Index many) {
   SpecimenOptions options;
   options.load = load;
   options.edges = edges;
@@ -141,9 +155,11 @@ std::vector<double> plate_values(PlateLoad load, PlateEdges edges, double aspect
   EXPECT_TRUE(plate.ok());
   const double width = 2, thickness = 0.01, rigidity = 210e9 * std::pow(thickness, 3) / (12 * (1 - 0.09));
   std::vector<double> values;
-  for (const CriticalValue& found : first_values(plate->stiffness, mass ? *plate->mass : *plate->geometric, mass, many)) {
-    const double value = mass ? std::sqrt(found.value * 7850 * thickness / rigidity) * std::pow(aspect * width, 2)
-                              : found.value * 100e3 * width * width / (std::numbers::pi * std::numbers::pi * rigidity);
+  for (const CriticalValue& found :
+       first_values(plate->stiffness, mass ? *plate->mass : *plate->geometric, mass, many)) {
+    const double value =
+        mass ? std::sqrt(found.value * 7850 * thickness / rigidity) * std::pow(aspect * width, 2)
+             : found.value * 100e3 * width * width / (std::numbers::pi * std::numbers::pi * rigidity);
     values.insert(values.end(), static_cast<std::size_t>(found.multiplicity), value);
   }
   return values;
@@ -163,10 +179,14 @@ TEST_F(Published, PlatesUnderCompressionForSeveralAspects) {
 TEST_F(Published, PlatesUnderBiaxialAndShearLoadAndClamped) {
   const auto& ritz = published()["plate_ritz_converged"]["N=12"];
   const std::tuple<const char*, PlateLoad, PlateEdges, double> cases[] = {
-      {"SSSS biaxial 1", PlateLoad::kBiaxial, PlateEdges::kSimple, 1}, {"CCCC biaxial 1", PlateLoad::kBiaxial, PlateEdges::kClamped, 1},
-      {"CCCC uniaxial 1", PlateLoad::kUniaxial, PlateEdges::kClamped, 1}, {"CCCC uniaxial 2", PlateLoad::kUniaxial, PlateEdges::kClamped, 2},
-      {"SSSS shear 1", PlateLoad::kShear, PlateEdges::kSimple, 1},     {"SSSS shear 1.5", PlateLoad::kShear, PlateEdges::kSimple, 1.5},
-      {"SSSS shear 2", PlateLoad::kShear, PlateEdges::kSimple, 2},     {"CCCC shear 1", PlateLoad::kShear, PlateEdges::kClamped, 1}};
+      {"SSSS biaxial 1", PlateLoad::kBiaxial, PlateEdges::kSimple, 1},
+      {"CCCC biaxial 1", PlateLoad::kBiaxial, PlateEdges::kClamped, 1},
+      {"CCCC uniaxial 1", PlateLoad::kUniaxial, PlateEdges::kClamped, 1},
+      {"CCCC uniaxial 2", PlateLoad::kUniaxial, PlateEdges::kClamped, 2},
+      {"SSSS shear 1", PlateLoad::kShear, PlateEdges::kSimple, 1},
+      {"SSSS shear 1.5", PlateLoad::kShear, PlateEdges::kSimple, 1.5},
+      {"SSSS shear 2", PlateLoad::kShear, PlateEdges::kSimple, 2},
+      {"CCCC shear 1", PlateLoad::kShear, PlateEdges::kClamped, 1}};
   for (const auto& [name, load, edges, aspect] : cases) {
     SCOPED_TRACE(name);
     const double coarse = plate_values(load, edges, aspect, 2000, false, 1)[0];
@@ -177,12 +197,14 @@ TEST_F(Published, PlatesUnderBiaxialAndShearLoadAndClamped) {
 
 TEST_F(Published, FrequenciesOfPlates) {
   const auto& ritz = published()["plate_ritz_converged"]["N=12"];
-  for (const auto& [name, edges] : {std::pair{"SSSS vib", PlateEdges::kSimple}, std::pair{"CCCC vib 1", PlateEdges::kClamped}}) {
+  for (const auto& [name, edges] :
+       {std::pair{"SSSS vib", PlateEdges::kSimple}, std::pair{"CCCC vib 1", PlateEdges::kClamped}}) {
     SCOPED_TRACE(name);
     const auto coarse = plate_values(PlateLoad::kUniaxial, edges, 1, 2000, true, 4);
     const auto fine = plate_values(PlateLoad::kUniaxial, edges, 1, 8000, true, 4);
     ASSERT_GE(fine.size(), 4u);
-    for (std::size_t k = 0; k < 4; ++k) expect_convergence(coarse[k], fine[k], real(ritz[name][k]), 2.5, 0.02);
+    for (std::size_t k = 0; k < 4; ++k)
+      expect_convergence(coarse[k], fine[k], real(ritz[name][k]), 2.5, 0.02);
   }
 }
 
@@ -213,7 +235,8 @@ TEST_F(Published, PairsOfTheCollectionWithBothSigns) {
       std::size_t k = 0;
       for (const CriticalValue& value : found) {
         for (Index times = 0; times < value.multiplicity && k < values.size(); ++times, ++k) {
-          // Dense generalised eigenvalues carry rounding of their own, relative to the largest of the inverse pencil.
+          // Dense generalised eigenvalues carry rounding of their own, relative to the largest of the inverse
+          // pencil.
           EXPECT_NEAR(real(values[k]) / value.value, 1, 1e-6) << k;
         }
       }

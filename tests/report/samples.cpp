@@ -213,12 +213,18 @@ Outcome location_unresolved() {
 }
 
 std::vector<std::pair<std::string, Outcome>> all() {
-  return {{"definite", definite()},       {"semidefinite", semidefinite()},
-          {"indefinite", indefinite()},   {"unresolved", unresolved()},
-          {"constrained", constrained()}, {"constrained_range", constrained_range()},
-          {"counted", counted()},         {"counted_in_part", counted_in_part()},
-          {"forecast", forecast()},       {"located", located()},
-          {"nothing_located", nothing_located()}, {"location_unresolved", location_unresolved()}};
+  return {{"definite", definite()},
+          {"semidefinite", semidefinite()},
+          {"indefinite", indefinite()},
+          {"unresolved", unresolved()},
+          {"constrained", constrained()},
+          {"constrained_range", constrained_range()},
+          {"counted", counted()},
+          {"counted_in_part", counted_in_part()},
+          {"forecast", forecast()},
+          {"located", located()},
+          {"nothing_located", nothing_located()},
+          {"location_unresolved", location_unresolved()}};
 }
 
 }  // namespace stanchion::samples

@@ -19,8 +19,8 @@ Outcome counted();            ///< three shifts of K + f G, all certified
 Outcome counted_in_part();    ///< one shift without certificate
 Outcome forecast();
 
-Outcome located();            ///< locate: a loose part, a negative spring, an unresolved rest; mass
-Outcome nothing_located();    ///< check --locate of a definite matrix, with local accuracy
+Outcome located();              ///< locate: a loose part, a negative spring, an unresolved rest; mass
+Outcome nothing_located();      ///< check --locate of a definite matrix, with local accuracy
 Outcome location_unresolved();  ///< locate where nothing is certified
 
 std::vector<std::pair<std::string, Outcome>> all();

@@ -6,12 +6,14 @@ namespace stanchion {
 namespace {
 
 TEST(SymmetricMatrix, FromTripletsFoldsSumsAndSorts) {
-  const auto matrix = from_triplets(3, {{2, 2, 6}, {0, 1, 0.5}, {1, 0, 0.5}, {0, 0, 4}, {1, 2, 2}, {1, 1, 5}});
+  const auto matrix =
+      from_triplets(3, {{2, 2, 6}, {0, 1, 0.5}, {1, 0, 0.5}, {0, 0, 4}, {1, 2, 2}, {1, 1, 5}});
   EXPECT_TRUE(check_invariants(matrix));
   EXPECT_EQ(std::vector<Offset>(matrix.column_start.begin(), matrix.column_start.end()),
             (std::vector<Offset>{0, 2, 4, 5}));
   EXPECT_EQ(std::vector<Index>(matrix.row.begin(), matrix.row.end()), (std::vector<Index>{0, 1, 1, 2, 2}));
-  EXPECT_EQ(std::vector<double>(matrix.value.begin(), matrix.value.end()), (std::vector<double>{4, 1, 5, 2, 6}));
+  EXPECT_EQ(std::vector<double>(matrix.value.begin(), matrix.value.end()),
+            (std::vector<double>{4, 1, 5, 2, 6}));
 }
 
 TEST(SymmetricMatrix, InvariantsCatchEachBreach) {

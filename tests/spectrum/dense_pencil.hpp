@@ -14,15 +14,15 @@
 
 namespace stanchion::test {
 
-/// B = T T^T and C = T diag(theta) T^T with a banded T: theta are the eigenvalues by construction, exactly where products
-/// of small integers are exact.
+/// B = T T^T and C = T diag(theta) T^T with a banded T: theta are the eigenvalues by construction, exactly
+/// where products of small integers are exact.
 struct KnownPencil {
   SymmetricMatrix base, second;
   std::vector<double> thetas;
 };
 
-/// T unit lower bidiagonal with entries in {-1/2, 0, 1/2} below the diagonal: products with `thetas` on a coarse grid are
-/// exact in double, so the thetas are exact eigenvalues.
+/// T unit lower bidiagonal with entries in {-1/2, 0, 1/2} below the diagonal: products with `thetas` on a
+/// coarse grid are exact in double, so the thetas are exact eigenvalues.
 inline KnownPencil known_pencil(const std::vector<double>& thetas, unsigned seed) {
   std::mt19937 random(seed);
   const auto n = static_cast<Index>(thetas.size());
@@ -51,7 +51,8 @@ struct PencilParts {
   explicit PencilParts(const KnownPencil& pencil) {
     const std::vector<const SymmetricMatrix*> members{&pencil.base, &pencil.second};
     MatrixFamily joined = unite(members);
-    SymmetricMatrix pattern{joined.rows, joined.column_start.clone(), joined.row.clone(), joined.values[0].clone()};
+    SymmetricMatrix pattern{joined.rows, joined.column_start.clone(), joined.row.clone(),
+                            joined.values[0].clone()};
     auto analysed = analyse({&pattern, {}, true, false}, 1);
     EXPECT_TRUE(analysed.ok());
     analysis = std::move(*analysed);

@@ -10,7 +10,8 @@ ValueSpan span(double low, double high, Index count = 1, std::vector<std::size_t
 }
 
 TEST(ListedValues, TolerancesThatMeetAreOneCluster) {
-  const auto clusters = clusters_of({span(5, 6, 1, {0}), span(1, 2, 1, {1}), span(1.5, 1.7, 1, {2}), span(2, 3, 1, {3})});
+  const auto clusters =
+      clusters_of({span(5, 6, 1, {0}), span(1, 2, 1, {1}), span(1.5, 1.7, 1, {2}), span(2, 3, 1, {3})});
   ASSERT_EQ(clusters.size(), 2u);
   EXPECT_EQ(clusters[0].low, 1);
   EXPECT_EQ(clusters[0].high, 3);
@@ -19,7 +20,8 @@ TEST(ListedValues, TolerancesThatMeetAreOneCluster) {
 }
 
 TEST(ListedValues, StretchesFillTheRangeAndSplitNothing) {
-  const auto stretches = compare_spans({span(1, 1.1), span(3, 3.1)}, {span(1.05, 1.06), span(2, 2.01, 2)}, 0, 4);
+  const auto stretches =
+      compare_spans({span(1, 1.1), span(3, 3.1)}, {span(1.05, 1.06), span(2, 2.01, 2)}, 0, 4);
   ASSERT_EQ(stretches.size(), 3u);
   EXPECT_EQ(stretches[0].low, 0);
   EXPECT_EQ(stretches[2].high, 4);

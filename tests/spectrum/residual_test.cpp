@@ -10,7 +10,8 @@ namespace {
 using namespace test;
 
 /// Approximate vectors of all values: the whole space, disturbed by `noise`.
-std::vector<ResidualPair> pairs_with_noise(const KnownPencil& known, PencilParts& parts, DefiniteBase& base, double noise) {
+std::vector<ResidualPair> pairs_with_noise(const KnownPencil& known, PencilParts& parts, DefiniteBase& base,
+                                           double noise) {
   const BlockRows rows(parts.second());
   std::vector<double> work(static_cast<std::size_t>(rows.rows()) * kBlockVectors);
   BlockLanczos lanczos(
@@ -27,18 +28,21 @@ std::vector<ResidualPair> pairs_with_noise(const KnownPencil& known, PencilParts
   std::normal_distribution<double> gauss;
   std::vector<ResidualPair> pairs;
   for (std::size_t first = 0; first < all.size(); first += kBlockVectors) {
-    const std::vector<RitzValue> chosen(all.begin() + static_cast<long>(first),
-                                        all.begin() + static_cast<long>(std::min(first + kBlockVectors, all.size())));
+    const std::vector<RitzValue> chosen(
+        all.begin() + static_cast<long>(first),
+        all.begin() + static_cast<long>(std::min(first + kBlockVectors, all.size())));
     std::vector<double> block = lanczos.vectors(chosen);
     for (double& entry : block) entry += noise * gauss(random);
-    for (ResidualPair& pair : residual_pairs(base, parts.second(), block, static_cast<Index>(chosen.size()))) {
+    for (ResidualPair& pair :
+         residual_pairs(base, parts.second(), block, static_cast<Index>(chosen.size()))) {
       pairs.push_back(std::move(pair));
     }
   }
   return pairs;
 }
 
-/// Each interval must hold at least as many exact eigenvalues as it has vectors, and all intervals together all of them.
+/// Each interval must hold at least as many exact eigenvalues as it has vectors, and all intervals together
+/// all of them.
 void hold(const KnownPencil& known, const std::vector<EigenvalueGroup>& groups) {
   std::size_t vectors = 0;
   for (std::size_t k = 0; k < groups.size(); ++k) {
@@ -106,8 +110,8 @@ TEST(ResidualIntervals, RefiningMakesThemTighter) {
   EXPECT_LT(after, before / 100);
 }
 
-/// 4000 equal products whose sum rounds the same way every time, and two that cancel it but for its last digits. The
-/// error of the double-double sum is 300 u^2 of its size, far above what two members could lose.
+/// 4000 equal products whose sum rounds the same way every time, and two that cancel it but for its last
+/// digits. The error of the double-double sum is 300 u^2 of its size, far above what two members could lose.
 TEST(ResidualIntervals, CountTheMembersOfASum) {
   __extension__ using Wide = __int128;
   constexpr int kMembers = 4000;

@@ -26,7 +26,8 @@ inline std::vector<double> to_dense(const SymmetricMatrix& matrix) {
 
 /// Ascending eigenvalues of a full symmetric matrix.
 inline std::vector<double> eigenvalues(std::vector<double> full, int n) {
-  std::vector<double> values(static_cast<std::size_t>(n)), work(static_cast<std::size_t>(std::max(1, 34 * n)));
+  std::vector<double> values(static_cast<std::size_t>(n)),
+      work(static_cast<std::size_t>(std::max(1, 34 * n)));
   const int lwork = static_cast<int>(work.size());
   int info = 0;
   dsyev_("N", "L", &n, full.data(), &n, values.data(), work.data(), &lwork, &info);

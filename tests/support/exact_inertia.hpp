@@ -12,8 +12,9 @@ struct ExactInertia {
   int negative = 0, zero = 0, positive = 0;
 };
 
-/// Symmetric elimination with 1x1 pivots, and a 2x2 pivot [0 b; b 0]-like step when every diagonal is zero; all in
-/// rational numbers, so every sign is exact. Doubles are dyadic, hence exactly representable. For n up to about 30.
+/// Symmetric elimination with 1x1 pivots, and a 2x2 pivot [0 b; b 0]-like step when every diagonal is zero;
+/// all in rational numbers, so every sign is exact. Doubles are dyadic, hence exactly representable. For n up
+/// to about 30.
 inline ExactInertia exact_inertia(const SymmetricMatrix& matrix) {
   using Rational = boost::multiprecision::cpp_rational;
   const auto n = static_cast<std::size_t>(matrix.rows);

@@ -50,8 +50,10 @@ inline std::vector<double> laplacian_spectrum(Index nx, Index ny, Index nz) {
   return values;
 }
 
-/// Random sparse symmetric matrix: about `degree` entries a row; `zero_diagonal` of the diagonal is exactly zero.
-inline SymmetricMatrix random_sparse(Random& random, Index n, double degree, double zero_diagonal, double dominance) {
+/// Random sparse symmetric matrix: about `degree` entries a row; `zero_diagonal` of the diagonal is exactly
+/// zero.
+inline SymmetricMatrix random_sparse(Random& random, Index n, double degree, double zero_diagonal,
+                                     double dominance) {
   std::vector<Triplet> entries;
   for (Index i = 0; i < n; ++i) {
     const bool zero = uniform(random, 0, 1) < zero_diagonal;
