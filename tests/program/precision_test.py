@@ -45,7 +45,8 @@ class PrecisionTest(ProgramTest):
         for precision in ("double", "extended"):
             memory = self.expect(0, "check", "solid/K.mtx", "--precision", precision)["memory_bytes"]
             forecast[precision], peak[precision] = memory["forecast"], memory["peak"]
-        self.assertGreater(forecast["extended"], 1.3 * forecast["double"])
+        # The stack of this model takes some 40 MB in doubles; what the process holds besides differs between builds.
+        self.assertGreater(forecast["extended"] - forecast["double"], 25e6)
         self.assertLessEqual(peak["extended"], 1.05 * forecast["extended"])
         between = (forecast["double"] + forecast["extended"]) // 2
         self.expect(0, "check", "solid/K.mtx", "--memory-cap", between)
