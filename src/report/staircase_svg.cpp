@@ -7,6 +7,7 @@
 #include <vector>
 
 #include "report/numbers.hpp"
+#include "report/staircase_points.hpp"
 
 namespace stanchion {
 namespace {
@@ -36,21 +37,6 @@ std::string escaped(const std::string& text) {
   return safe;
 }
 
-/// The count where it is known as one number.
-struct Point {
-  double shift = 0;
-  Index count = 0;
-};
-
-std::vector<Point> known_points(const std::vector<ShiftCount>& counts) {
-  std::vector<Point> points;
-  for (const ShiftCount& count : counts) {
-    if (count.below) points.push_back({count.shift, *count.below});
-  }
-  std::sort(points.begin(), points.end(), [](const Point& a, const Point& b) { return a.shift < b.shift; });
-  return points;
-}
-
 /// 1, 2 or 5 times a power of ten, so that about `many` of them span `range`.
 double tick_step(double range, int many) {
   const double raw = range / many, power = std::pow(10.0, std::floor(std::log10(raw)));
@@ -60,7 +46,7 @@ double tick_step(double range, int many) {
 
 class StaircasePicture {
  public:
-  StaircasePicture(const std::vector<Point>& points, bool logarithmic)
+  StaircasePicture(const std::vector<StaircasePoint>& points, bool logarithmic)
       : points_(points), logarithmic_(logarithmic) {
     low_ = place(points.front().shift);
     high_ = place(points.back().shift);
@@ -68,7 +54,7 @@ class StaircasePicture {
       low_ -= 0.5;
       high_ += 0.5;
     }
-    for (const Point& point : points) most_ = std::max(most_, point.count);
+    for (const StaircasePoint& point : points) most_ = std::max(most_, point.count);
   }
 
   std::string draw(const std::string& meaning, const std::string& axis) {
@@ -144,7 +130,7 @@ class StaircasePicture {
 
   void steps() {
     for (std::size_t i = 1; i < points_.size(); ++i) {
-      const Point &a = points_[i - 1], &b = points_[i];
+      const StaircasePoint &a = points_[i - 1], &b = points_[i];
       if (a.count == b.count) {
         line(x(a.shift), y(a.count), x(b.shift), y(b.count), "stroke=\"#0b5394\" stroke-width=\"2.5\"");
         continue;
@@ -158,14 +144,14 @@ class StaircasePicture {
           left, top, right - left, bottom - top,
           escaped(fmt::format("{} between {} and {}", b.count - a.count, exact(a.shift), exact(b.shift))));
     }
-    for (const Point& point : points_) {
+    for (const StaircasePoint& point : points_) {
       svg_ += fmt::format(
           "<circle cx=\"{:.2f}\" cy=\"{:.2f}\" r=\"3\" fill=\"#0b5394\"><title>{}</title></circle>\n",
           x(point.shift), y(point.count), escaped(fmt::format("{} at {}", point.count, exact(point.shift))));
     }
   }
 
-  const std::vector<Point>& points_;
+  const std::vector<StaircasePoint>& points_;
   bool logarithmic_;
   double low_ = 0, high_ = 1;
   Index most_ = 0;
@@ -190,7 +176,7 @@ std::string meaning_of(const std::vector<ShiftCount>& counts) {
 
 std::string staircase_svg(const Outcome& outcome, bool logarithmic) {
   if (!outcome.count) return {};
-  const std::vector<Point> points = known_points(outcome.count->counts);
+  const std::vector<StaircasePoint> points = known_points(outcome.count->counts);
   if (points.empty()) return {};
   const bool one_sign = points.front().shift > 0 || points.back().shift < 0;
   const std::string meaning = meaning_of(outcome.count->counts);

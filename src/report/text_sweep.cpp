@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "report/numbers.hpp"
+#include "report/staircase_points.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {
@@ -11,25 +12,12 @@ namespace {
 
 constexpr int kColumns = 72, kMostRows = 10;
 
-struct Point {
-  double shift = 0;
-  Index count = 0;
-};
-
-std::vector<Point> known_points(const std::vector<ShiftCount>& counts) {
-  std::vector<Point> points;
-  for (const ShiftCount& count : counts) {
-    if (count.below) points.push_back({count.shift, *count.below});
-  }
-  return points;
-}
-
 /// A row for each height, top first; '_' where the count is known between shifts, ':' where it changes
 /// somewhere.
-void write_picture(Page& page, const std::vector<Point>& points) {
+void write_picture(Page& page, const std::vector<StaircasePoint>& points) {
   if (points.size() < 2 || !(points.back().shift > points.front().shift)) return;
   Index most = 0;
-  for (const Point& point : points) most = std::max(most, point.count);
+  for (const StaircasePoint& point : points) most = std::max(most, point.count);
   const int rows = std::min<int>(most, kMostRows);
   const auto row_of = [&](Index count) {
     return most == 0 ? 0 : static_cast<int>(std::lround(static_cast<double>(count) / most * rows));
@@ -40,7 +28,7 @@ void write_picture(Page& page, const std::vector<Point>& points) {
   };
   std::vector<std::string> lines(static_cast<std::size_t>(rows) + 1, std::string(kColumns, ' '));
   for (std::size_t i = 1; i < points.size(); ++i) {
-    const Point &a = points[i - 1], &b = points[i];
+    const StaircasePoint &a = points[i - 1], &b = points[i];
     const bool level = a.count == b.count;
     const int bottom = row_of(std::min(a.count, b.count)), top = row_of(std::max(a.count, b.count));
     for (int c = column_of(a.shift); c <= column_of(b.shift); ++c) {
