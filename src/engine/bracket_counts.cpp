@@ -1,4 +1,5 @@
 #include "engine/bracket_counts.hpp"
+#include "base/fault_words.hpp"
 
 #include <algorithm>
 #include <cmath>
@@ -53,8 +54,7 @@ class Bisection {
     auto fact = counter_.fact(*count);
     if (fact) staircase_.add(*fact);
     if (!staircase_.contradictions().empty()) {
-      return Status::internal(
-          "certified counts contradict each other: a fault of the machine, its BLAS, or the program");
+      return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
     }
     return fact;
   }

@@ -6,6 +6,7 @@
 #include <cstdlib>
 
 #include "base/counter_random.hpp"
+#include "base/fault_words.hpp"
 #include "engine/host.hpp"
 #include "spectrum/block_lanczos.hpp"
 #include "spectrum/block_rows.hpp"
@@ -273,8 +274,7 @@ class ResidualBrackets {
     auto fact = counter_.fact(*count);
     if (fact) answer_.counts.add(*fact);
     if (!answer_.counts.contradictions().empty()) {
-      return Status::internal(
-          "certified counts contradict each other: a fault of the machine, its BLAS, or the program");
+      return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
     }
     return fact;
   }
@@ -321,8 +321,8 @@ class ResidualBrackets {
     }
     if (sum > *range.count) {
       return Status::internal(
-          "more values lie in disjoint residual intervals than a certified count allows: a fault of the "
-          "machine, its BLAS, or the program");
+          std::string("more values lie in disjoint residual intervals than a certified count allows: ") +
+          kMachineOrProgram);
     }
     if (sum < *range.count) return false;
     std::sort(found.values.begin(), found.values.end(),

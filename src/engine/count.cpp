@@ -2,6 +2,7 @@
 #include <cstdio>
 
 #include "base/clock.hpp"
+#include "base/fault_words.hpp"
 #include "engine/other_side.hpp"
 #include "engine/pencil_counter.hpp"
 
@@ -15,8 +16,7 @@ Status never_falls(const PencilCounter& counter, const std::vector<ShiftCount>& 
     if (const auto fact = counter.fact(count)) staircase.add(*fact);
   }
   if (staircase.contradictions().empty()) return {};
-  return Status::internal(
-      "certified counts contradict each other: a fault of the machine, its BLAS, or the program");
+  return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
 }
 
 Result<Outcome> count_model(ModelInput model, const Request& request, const RunContext& context,

@@ -3,6 +3,7 @@
 #include <cstdio>
 
 #include "base/clock.hpp"
+#include "base/fault_words.hpp"
 #include "engine/other_side.hpp"
 #include "engine/side_by_side.hpp"
 
@@ -88,13 +89,12 @@ class Sweep {
 
   void report(const Contradiction& pair) {
     char text[512];
-    std::snprintf(text, sizeof(text),
-                  "the certified counts at %.10g and %.10g contradict each other: at least %d values by the "
-                  "one, at most %d "
-                  "by the other. One of the two certificates is wrong: a defect of the machine, its BLAS or "
-                  "the program. "
-                  "Both certificates are in the JSON document",
-                  pair.shift, pair.other_shift, pair.least, pair.most);
+    std::snprintf(
+        text, sizeof(text),
+        "the certified counts at %.10g and %.10g contradict each other: at least %d values by the "
+        "one, at most %d "
+        "by the other. One of the two certificates is wrong: %s. Both certificates are in the JSON document",
+        pair.shift, pair.other_shift, pair.least, pair.most, kMachineOrProgram);
     counter_.warn("counts-contradict", text);
   }
 

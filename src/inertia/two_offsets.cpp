@@ -4,6 +4,7 @@
 #include <cmath>
 #include <cstdio>
 
+#include "base/fault_words.hpp"
 #include "extended/factorize.hpp"
 #include "sparse/product.hpp"
 
@@ -170,7 +171,7 @@ class OffsetScheme {
       if (below->negative < above->negative) {
         return Status::internal("the counts at the two offsets contradict their error bounds (" +
                                 std::to_string(below->negative) + " < " + std::to_string(above->negative) +
-                                "): a fault of the machine, its BLAS, or the program");
+                                "): " + kMachineOrProgram);
       }
       settle(rows_ - below->negative, above->negative, offset, below->bound);
       have_answer = true;

@@ -67,7 +67,7 @@ struct PivotSigns {
 struct Factorization {
   bool stopped = false;    ///< definite attempt met a pivot that is not positive; counts are not valid
   bool breakdown = false;  ///< overflow or pivots too small to divide by; counts are not valid
-  bool fault = false;      ///< the machine, its memory or its BLAS computed wrongly; nothing is valid
+  bool fault = false;      ///< the machine or its memory computed wrongly; nothing is valid
   Index fault_row =
       -1;  ///< the first row, in elimination order, that differs from A x by more than its bound
   PivotSigns signs;

@@ -5,6 +5,7 @@
 #include <numeric>
 
 #include "base/clock.hpp"
+#include "base/fault_words.hpp"
 #include "dense/blas.hpp"
 #include "numeric/front_worker.hpp"
 
@@ -166,12 +167,10 @@ Status check_fault(const Analysis& analysis, const Factorization& factorization)
   if (!factorization.fault) return {};
   const Index equation = analysis.tree.equation_at[factorization.fault_row];
   return {StatusKind::kInternal, "machine-fault",
-          "the factors do not reproduce the matrix within their proved error bound: a fault of the machine, "
-          "its memory "
-          "or its BLAS (" +
-              blas_description() + "); no answer is given",
+          std::string("the factors do not reproduce the matrix within their proved error bound: ") +
+              kMachineOrProgram + "; no answer is given",
           "equation " + std::to_string(Offset{equation} + 1),
-          "run `stanchion selftest`; then try again with another BLAS or on another machine"};
+          "run `stanchion selftest`; then try again on another machine"};
 }
 
 Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix,

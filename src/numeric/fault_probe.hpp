@@ -10,7 +10,7 @@ namespace stanchion {
 
 /// A vector x of signs and the product A x of the matrix as formed. If P A P^T = L D L^T + E with |E| e <= r,
 /// then |A x - P^T L D L^T P x| <= r in every row, for |x_i| = 1: a row beyond that was computed wrongly, by
-/// the machine, its memory or its BLAS. An error of one entry is never missed; errors that cancel are, for
+/// the machine or its memory. An error of one entry is never missed; errors that cancel are, for
 /// half the signs. Derivation: src/inertia/error_bound.md, section 9.
 struct FaultProbe {
   Buffer<signed char> sign;      ///< +1 or -1 a row, in elimination order
