@@ -23,6 +23,7 @@
 #include "report/junit.hpp"
 #include "report/staircase_svg.hpp"
 #include "report/text.hpp"
+#include "report/view_json.hpp"
 #include "report/vtu.hpp"
 
 namespace stanchion::cli {
@@ -48,6 +49,8 @@ void declare_output_options(Arguments& arguments, OutputOptions& options, Questi
   if (question == Question::kCheck || question == Question::kLocate) {
     arguments.text("--vtu", options.vtu, "FILE",
                    "nodes, links, motions and digits as a VTK grid (needs --nodes)");
+    arguments.text("--view", options.view, "FILE",
+                   "the same thinned to what a screen shows, as JSON (needs --nodes)");
   }
   if (question == Question::kCheck || question == Question::kCount) {
     arguments.text("--certificate", options.certificate, "FILE",
@@ -85,7 +88,7 @@ Result<Judgement> build_judgement(const OutputOptions& output, bool symmetric_pa
 
 /// Every file that is to be written, opened ahead of the work.
 struct Targets {
-  std::optional<AnswerFile> json, html, junit, csv, vtu, certificate, witness, svg, modes;
+  std::optional<AnswerFile> json, html, junit, csv, vtu, view, certificate, witness, svg, modes;
   std::vector<CertifiedFile> support_files;  ///< for the certificate
 };
 
@@ -103,13 +106,15 @@ Status open_targets(const OutputOptions& output, const Request& request, Targets
   for (const Status& status :
        {refuse_dash("--certificate", output.certificate), refuse_dash("--witness", output.witness),
         refuse_dash("--html", output.html), refuse_dash("--junit", output.junit),
-        refuse_dash("--csv", output.csv), refuse_dash("--vtu", output.vtu), refuse_dash("--svg", output.svg),
+        refuse_dash("--csv", output.csv), refuse_dash("--vtu", output.vtu),
+        refuse_dash("--view", output.view), refuse_dash("--svg", output.svg),
         refuse_dash("--results", output.results), refuse_dash("--modes", output.modes),
         check_targets_differ({{"--json", output.json},
                               {"--html", output.html},
                               {"--junit", output.junit},
                               {"--csv", output.csv},
                               {"--vtu", output.vtu},
+                              {"--view", output.view},
                               {"--certificate", output.certificate},
                               {"--witness", output.witness},
                               {"--svg", output.svg},
@@ -129,6 +134,7 @@ Status open_targets(const OutputOptions& output, const Request& request, Targets
   if (Status status = open("--junit", output.junit, targets.junit); !status.ok()) return status;
   if (Status status = open("--csv", output.csv, targets.csv); !status.ok()) return status;
   if (Status status = open("--vtu", output.vtu, targets.vtu); !status.ok()) return status;
+  if (Status status = open("--view", output.view, targets.view); !status.ok()) return status;
   if (Status status = open("--certificate", output.certificate, targets.certificate); !status.ok())
     return status;
   if (Status status = open("--witness", output.witness, targets.witness); !status.ok()) return status;
@@ -163,14 +169,16 @@ Status deliver_witness(const OutputOptions& output, const std::optional<std::str
   return {};
 }
 
-/// The grid, or a warning that there is nothing to put on it; the file then does not appear.
+/// Grid and view, or a warning that there is nothing to put on them; the files then do not appear.
 Status deliver_grid(const OutputOptions& output, Targets& targets, Outcome& outcome) {
-  if (!targets.vtu || outcome.bracket) return {};
-  if (outcome.located && !outcome.located->picture.node.empty())
-    return targets.vtu->commit(to_vtu(*outcome.located));
+  if ((!targets.vtu && !targets.view) || outcome.bracket) return {};
+  if (outcome.located && !outcome.located->picture.node.empty()) {
+    Status status = targets.vtu ? targets.vtu->commit(to_vtu(*outcome.located)) : Status{};
+    return status.ok() && targets.view ? targets.view->commit(to_view_json(*outcome.located)) : status;
+  }
   const Warning none{"no-grid",
                      "there is nothing to put on a grid: no coordinates are known, or nothing was certified",
-                     *output.vtu + " (not written)"};
+                     output.vtu.value_or(output.view.value_or("")) + " (not written)"};
   outcome.warnings.push_back(none);
   if (output.quiet) print_failure({StatusKind::kOk, none.code, none.message, none.place});
   return {};
@@ -285,9 +293,9 @@ Result<int> QuestionCommand::run(const Call& call) {
   auto request = build_request(request_, question_);
   if (!request.ok()) return request.status();
   request->want_witness = output_.witness.has_value();
-  if (output_.vtu && question_ == Question::kCheck && !request->want_location) {
-    return Status::bad_usage("contradiction", "a grid shows located motions, and none are asked for", "--vtu",
-                             "add --locate, or use stanchion locate");
+  if ((output_.vtu || output_.view) && question_ == Question::kCheck && !request->want_location) {
+    return Status::bad_usage("contradiction", "a grid shows located motions, and none are asked for",
+                             output_.vtu ? "--vtu" : "--view", "add --locate, or use stanchion locate");
   }
   const auto judgement = build_judgement(output_, request_.symmetric_part, question_);
   if (!judgement.ok()) return judgement.status();

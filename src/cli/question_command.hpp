@@ -11,7 +11,7 @@ namespace stanchion::cli {
 
 /// Where the answer goes, as typed.
 struct OutputOptions {
-  std::optional<std::string> json, html, junit, csv, vtu, certificate, witness, log, title, reference,
+  std::optional<std::string> json, html, junit, csv, vtu, view, certificate, witness, log, title, reference,
       expectation;
   std::optional<std::string> svg, results, modes;
   bool quiet = false;

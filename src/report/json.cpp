@@ -1,8 +1,10 @@
 #include "report/json.hpp"
 
 #include "model/names.hpp"
+#include "report/cause_words.hpp"
 #include "report/json_parts.hpp"
 #include "report/json_spectrum.hpp"
+#include "report/text_sections.hpp"
 
 namespace stanchion {
 namespace {
@@ -153,6 +155,19 @@ Json json_of(const Work& work) {
           {"factorizations", work.factorizations}};
 }
 
+/// The sentences that open the text report.
+Json words_of(const Outcome& outcome) {
+  Page page;
+  write_answer(page, outcome);
+  Json words = Json::array();
+  for (const Page::Block& block : page.blocks()) {
+    if (block.kind != Page::Kind::kSentence) break;
+    words.push_back(json_of(block.text));
+  }
+  if (outcome.located) words.push_back(json_of(location_headline(*outcome.located)));
+  return words;
+}
+
 Json common_part(const Outcome& outcome) {
   Json document;
   document["schema_version"] = kSchemaVersion;
@@ -195,6 +210,7 @@ void add_answer(Json& document, const Outcome& outcome) {
 
 std::string to_json(const Outcome& outcome) {
   Json document = common_part(outcome);
+  document["in_words"] = words_of(outcome);
   add_answer(document, outcome);
   document["risk"] = json_of(outcome.risk);
   document["risk_allowed"] = json_of(outcome.risk_allowed);

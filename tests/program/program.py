@@ -19,7 +19,7 @@ def validator(schema):
     return jsonschema.Draft202012Validator(json.loads(text))
 
 
-VALIDATORS = {schema: validator(schema) for schema in ("outcome-1", "certificate-1", "recheck-1")}
+VALIDATORS = {schema: validator(schema) for schema in ("outcome-1", "certificate-1", "recheck-1", "view-1")}
 
 
 def refuse_constant(text):

@@ -1,4 +1,4 @@
-"""--html, --csv, --junit, --vtu: well formed, alone, and saying what the JSON says."""
+"""--html, --csv, --junit, --vtu, --view: well formed, alone, and saying what the JSON says."""
 
 import csv
 import html.parser
@@ -6,7 +6,7 @@ import importlib
 import unittest
 import xml.etree.ElementTree
 
-from program import ProgramTest
+from program import ProgramTest, read_json
 
 VOID = {"meta", "br", "hr", "img", "input", "link", "path", "circle", "rect"}
 
@@ -49,10 +49,10 @@ class ReportsTest(ProgramTest):
         folder = self.folder / "model"
         run = self.run_program("specimen", name, "--unknowns", 900, "--fault", fault, "--out", folder, "--quiet")
         self.assertEqual(run.returncode, 0, run.stderr)
-        files = {kind: self.folder / f"answer.{kind}" for kind in ("html", "csv", "xml", "vtu")}
+        files = {kind: self.folder / f"answer.{kind}" for kind in ("html", "csv", "xml", "vtu", "view")}
         document = self.expect(code, "locate", folder / "K.mtx", "--dofs", folder / "dofs.csv", "--nodes",
                                folder / "nodes.csv", "--html", files["html"], "--csv", files["csv"], "--junit",
-                               files["xml"], "--vtu", files["vtu"], "--title", "Store & yard", "--reference", "sheet <14>")
+                               files["xml"], "--vtu", files["vtu"], "--view", files["view"], "--title", "Store & yard", "--reference", "sheet <14>")
         return document, files
 
     def test_html(self):
@@ -121,6 +121,22 @@ class ReportsTest(ProgramTest):
         self.assertEqual(grid.GetPointData().GetArray("motion_1").GetNumberOfComponents(), 3)
         self.assertEqual(grid.GetPointData().GetArray("node").GetValue(points - 1), int(arrays["node"][-1]))
 
+    def test_view_says_what_the_grid_says(self):
+        document, files = self.located()
+        view = read_json(files["view"].read_text(encoding="utf-8"), "view-1")
+        piece = xml.etree.ElementTree.parse(files["vtu"]).getroot().find("UnstructuredGrid/Piece")
+        arrays = {array.get("Name"): array.text.split() for array in piece.iter("DataArray")}
+        self.assertIsNone(view["cell"], "few nodes: all are there")
+        self.assertEqual([str(node) for node in view["node"]], arrays["node"])
+        points = [float(value) for value in piece.find("Points/DataArray").text.split()]
+        for k, place in enumerate(view["place"]):
+            self.assertAlmostEqual(place + view["centre"][k % 3], points[k], delta=1e-5 * view["size"])
+        self.assertEqual(len(view["motions"]), len(document["directions"]))
+        motion = view["motions"][0]
+        self.assertEqual(len(motion["nodes"]), document["directions"][0]["moving_nodes"])
+        self.assertEqual(len(motion["moved"]), 3 * len(motion["nodes"]))
+        self.assertEqual(view["node"][motion["marks"][0]], document["directions"][0]["nodes"][0]["node"])
+
     def test_every_command_has_a_page(self):
         folder = self.folder / "plate"
         self.run_program("specimen", "plate", "--unknowns", 600, "--out", folder, "--quiet")
@@ -138,7 +154,11 @@ class ReportsTest(ProgramTest):
         document = self.expect(0, "locate", folder / "K.mtx", "--vtu", grid)
         self.assertIn("no-grid", [warning["code"] for warning in document["warnings"]])
         self.assertFalse(grid.exists())
+        document = self.expect(0, "locate", folder / "K.mtx", "--view", grid)
+        self.assertIn("no-grid", [warning["code"] for warning in document["warnings"]])
+        self.assertFalse(grid.exists())
         self.expect_failure(2, "contradiction", "check", folder / "K.mtx", "--vtu", grid)
+        self.expect_failure(2, "contradiction", "check", folder / "K.mtx", "--view", grid)
         self.expect_failure(2, "bad-argument", "check", folder / "K.mtx", "--html", "-")
         self.expect_failure(2, "contradiction", "check", folder / "K.mtx", "--html", grid, "--csv", grid)
 

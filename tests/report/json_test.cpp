@@ -2,10 +2,12 @@
 
 #include <gtest/gtest.h>
 
+#include <algorithm>
 #include <limits>
 #include <nlohmann/json.hpp>
 
 #include "report/samples.hpp"
+#include "report/text.hpp"
 
 namespace stanchion {
 namespace {
@@ -23,15 +25,44 @@ std::vector<std::string> keys_of(const Json& object) {
 }
 
 TEST(Json, KeysOfACheckInTheirOrder) {
-  const std::vector<std::string> expected{
-      "schema_version", "program",      "command",      "arguments",
-      "title",          "reference",    "inputs",       "host",
-      "rows_analysed",  "rows_struck",  "verdict",      "verdict_for_all_roundings",
-      "inertia",        "certificate",  "constrained",  "witness",
-      "risk",           "risk_allowed", "seed",         "warnings",
-      "not_checked",    "work",         "memory_bytes", "timings_seconds"};
+  const std::vector<std::string> expected{"schema_version",
+                                          "program",
+                                          "command",
+                                          "arguments",
+                                          "title",
+                                          "reference",
+                                          "inputs",
+                                          "host",
+                                          "rows_analysed",
+                                          "rows_struck",
+                                          "in_words",
+                                          "verdict",
+                                          "verdict_for_all_roundings",
+                                          "inertia",
+                                          "certificate",
+                                          "constrained",
+                                          "witness",
+                                          "risk",
+                                          "risk_allowed",
+                                          "seed",
+                                          "warnings",
+                                          "not_checked",
+                                          "work",
+                                          "memory_bytes",
+                                          "timings_seconds"};
   EXPECT_EQ(keys_of(document_of(samples::definite())), expected);
   EXPECT_EQ(keys_of(document_of(samples::unresolved())), expected);
+}
+
+TEST(Json, TheWordsAreThoseThatOpenTheText) {
+  for (const auto& [name, outcome] : samples::all()) {
+    SCOPED_TRACE(name);
+    const Json words = document_of(outcome)["in_words"];
+    ASSERT_FALSE(words.empty());
+    std::string text = to_text(outcome);  // wrapped: any white space counts as one blank
+    std::replace(text.begin(), text.end(), '\n', ' ');
+    EXPECT_NE(text.find(words[0].get<std::string>()), std::string::npos) << words[0];
+  }
 }
 
 TEST(Json, ValuesOfACheck) {
