@@ -162,7 +162,8 @@ Json words_of(const Outcome& outcome) {
   Json words = Json::array();
   for (const Page::Block& block : page.blocks()) {
     if (block.kind != Page::Kind::kSentence) break;
-    words.push_back(json_of(block.text));
+    const bool opens_a_table = block.text.ends_with(':');
+    if (words.empty() || !opens_a_table) words.push_back(json_of(block.text));
   }
   if (outcome.located) words.push_back(json_of(location_headline(*outcome.located)));
   return words;
