@@ -26,11 +26,12 @@ std::vector<std::unique_ptr<stanchion::cli::Command>> all_commands() {
   commands.push_back(stanchion::cli::make_convert_command());
   commands.push_back(stanchion::cli::make_selftest_command());
   commands.push_back(stanchion::cli::make_recheck_command());
+  commands.push_back(stanchion::cli::make_describe_command());
   return commands;
 }
 
 int run(const std::vector<std::string>& arguments) {
-  const auto code = stanchion::cli::run_command_line(all_commands(), arguments);
+  const auto code = stanchion::cli::run_command_line(all_commands, arguments);
   if (code.ok()) return *code;
   stanchion::cli::print_failure(code.status());
   return stanchion::exit_code(code.status().kind());
@@ -47,9 +48,7 @@ int main(int argc, char** argv) {
   try {
     return run(std::vector<std::string>(argv + (argc > 0 ? 1 : 0), argv + argc));
   } catch (const std::bad_alloc&) {
-    return fail(
-        Status::resource_limit("out-of-memory", "the machine gave no more memory", {},
-                               "set --memory-cap to learn the need beforehand, or use a larger machine"));
+    return fail(stanchion::cli::out_of_memory());
   } catch (const std::exception& error) {
     return fail(Status::internal(error.what()));
   }

@@ -235,6 +235,7 @@ struct Work {
   Offset delayed_pivots = 0;
   Offset two_by_two_pivots = 0;
   Index factorizations = 0;
+  bool analysis_reused = false;  ///< the elimination order was found in the analysis store
 };
 
 struct MemoryUse {

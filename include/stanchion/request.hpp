@@ -113,6 +113,7 @@ struct Request {
   bool want_witness = false;   ///< check: also look for x with x^T A x < 0 beyond its rounding
   bool want_location = false;  ///< check: also where the zero, negative and weak directions are
   LocateOptions locate;
+  std::optional<std::string> analysis_store;  ///< folder where elimination orders are found and left
   bool second_path = false;  ///< another ordering and the plain kernels, to repeat a claim independently
 };
 

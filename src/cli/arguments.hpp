@@ -9,6 +9,7 @@
 #include <string>
 #include <vector>
 
+#include "model/option_table.hpp"
 #include "stanchion/status.hpp"
 
 namespace stanchion::cli {
@@ -20,8 +21,9 @@ class Arguments {
   explicit Arguments(std::unique_ptr<Parser> parser);
   ~Arguments();
 
-  /// Options declared from here on appear under this title in the help.
-  void group(const std::string& title);
+  /// Options declared from here on appear under this title in the help. Files named in them are read, or
+  /// with `outputs` written.
+  void group(const std::string& title, bool outputs = false);
 
   /// In the order of declaration; a `required` one that is missing is bad usage.
   void positional(const std::string& name, std::optional<std::string>& target, const std::string& value,
@@ -39,6 +41,15 @@ class Arguments {
             const std::string& help);
   void whole(const std::string& name, std::optional<std::int64_t>& target, const std::string& value,
              const std::string& help);
+  /// Comma separated numbers, kept as typed; may be given several times.
+  void numbers(const std::string& name, std::vector<std::string>& target, const std::string& value,
+               const std::string& help);
+  /// The option declared last, to say more about it: another key, another use.
+  OptionEntry& last() { return table_.options.back(); }
+
+  /// What was declared so far.
+  const CommandTable& table() const { return table_; }
+
   /// Printed below the options.
   void closing(const std::string& text);
 
@@ -47,8 +58,13 @@ class Arguments {
   Status convert_numbers() const;
 
  private:
+  void enter(const std::string& name, OptionKind kind, const std::string& value, const std::string& help,
+             bool required = false);
+
   std::unique_ptr<Parser> parser_;
   std::vector<std::function<Status()>> conversions_;
+  CommandTable table_;
+  bool outputs_ = false;
 };
 
 /// `text` as a finite number, all of it; bad usage ("bad-number") naming `option` otherwise.

@@ -5,6 +5,7 @@
 #include <CLI/CLI.hpp>
 #include <algorithm>
 #include <cstdio>
+#include <optional>
 
 #include "model/version.hpp"
 
@@ -19,31 +20,55 @@ struct Arguments::Parser {
 Arguments::Arguments(std::unique_ptr<Parser> parser) : parser_(std::move(parser)) {}
 Arguments::~Arguments() = default;
 
-void Arguments::group(const std::string& title) {
+void Arguments::group(const std::string& title, bool outputs) {
   parser_->group = title;
+  outputs_ = outputs;
+}
+
+namespace {
+
+/// "--memory-cap" to "memory_cap".
+std::string key_of(const std::string& name) {
+  std::string key = name.substr(std::min(name.find_first_not_of('-'), name.size()));
+  std::replace(key.begin(), key.end(), '-', '_');
+  return key;
+}
+
+}  // namespace
+
+void Arguments::enter(const std::string& name, OptionKind kind, const std::string& value,
+                      const std::string& help, bool required) {
+  OptionEntry entry{name, key_of(name), value, help, parser_->group, kind, OptionUse::kSetting, required};
+  if (value.rfind("FILE", 0) == 0) entry.use = outputs_ ? OptionUse::kOutput : OptionUse::kInput;
+  table_.options.push_back(std::move(entry));
 }
 
 void Arguments::positional(const std::string& name, std::optional<std::string>& target,
                            const std::string& value, const std::string& help, bool required) {
+  enter(name, OptionKind::kPositional, value, help, required);
   parser_->app->add_option(name, target, help)->type_name(value)->required(required);
 }
 
 void Arguments::positionals(const std::string& name, std::vector<std::string>& target,
                             const std::string& value, const std::string& help) {
+  enter(name, OptionKind::kPositionals, value, help);
   parser_->app->add_option(name, target, help)->type_name(value)->expected(-1);
 }
 
 void Arguments::flag(const std::string& name, bool& target, const std::string& help) {
+  enter(name, OptionKind::kFlag, "", help);
   parser_->app->add_flag(name, target, help)->group(parser_->group)->disable_flag_override();
 }
 
 void Arguments::text(const std::string& name, std::optional<std::string>& target, const std::string& value,
                      const std::string& help) {
+  enter(name, OptionKind::kText, value, help);
   parser_->app->add_option(name, target, help)->group(parser_->group)->type_name(value);
 }
 
 void Arguments::texts(const std::string& name, std::vector<std::string>& target, const std::string& value,
                       const std::string& help) {
+  enter(name, OptionKind::kTexts, value, help);
   parser_->app->add_option(name, target, help)
       ->group(parser_->group)
       ->type_name(value)
@@ -51,10 +76,17 @@ void Arguments::texts(const std::string& name, std::vector<std::string>& target,
       ->multi_option_policy(CLI::MultiOptionPolicy::TakeAll);
 }
 
+void Arguments::numbers(const std::string& name, std::vector<std::string>& target, const std::string& value,
+                        const std::string& help) {
+  texts(name, target, value, help);
+  last().kind = OptionKind::kNumbers;
+}
+
 void Arguments::real(const std::string& name, std::optional<double>& target, const std::string& value,
                      const std::string& help) {
   auto given = std::make_shared<std::optional<std::string>>();
   text(name, *given, value, help);
+  last().kind = OptionKind::kReal;
   conversions_.push_back([given, name, &target]() -> Status {
     if (!*given) return {};
     const auto number = parse_real(name, **given);
@@ -67,6 +99,7 @@ void Arguments::whole(const std::string& name, std::optional<std::int64_t>& targ
                       const std::string& help) {
   auto given = std::make_shared<std::optional<std::string>>();
   text(name, *given, value, help);
+  last().kind = OptionKind::kWhole;
   conversions_.push_back([given, name, &target]() -> Status {
     if (!*given) return {};
     const auto number = parse_whole(name, **given);
@@ -76,6 +109,7 @@ void Arguments::whole(const std::string& name, std::optional<std::int64_t>& targ
 }
 
 void Arguments::closing(const std::string& text) {
+  table_.closing = text;
   parser_->app->footer(text);
 }
 
@@ -152,8 +186,67 @@ std::vector<DeclaredCommand> declare_all(CLI::App& app,
 
 }  // namespace
 
-Result<int> run_command_line(const std::vector<std::unique_ptr<Command>>& commands,
-                             const std::vector<std::string>& arguments) {
+namespace {
+
+/// Parses into the commands; nothing when one was selected, the exit code when help or version was printed.
+Result<std::optional<int>> parse(CLI::App& app, const std::vector<DeclaredCommand>& declared,
+                                 const std::vector<std::string>& arguments, bool may_print) {
+  app.require_subcommand(1);
+  try {
+    std::vector<std::string> reversed(arguments.rbegin(), arguments.rend());  // the order the parser wants
+    app.parse(std::move(reversed));
+  } catch (const CLI::Success& asked) {  // --help, --version
+    if (may_print) app.exit(asked);
+    return std::optional<int>(0);
+  } catch (const CLI::ParseError& error) {
+    return usage_failure(error, app, declared);
+  }
+  return std::optional<int>();
+}
+
+const DeclaredCommand* selected(const CLI::App& app, const std::vector<DeclaredCommand>& declared) {
+  for (const auto& entry : declared) {
+    if (app.got_subcommand(entry.app)) return &entry;
+  }
+  return nullptr;
+}
+
+/// Checks one argument vector against a command of its own.
+Status check_arguments(CommandFactory all_commands, const std::vector<std::string>& arguments) {
+  auto commands = all_commands();
+  std::erase_if(commands, [&](const auto& command) {
+    return arguments.empty() || !command->requestable() || command->name() != arguments.front();
+  });
+  CLI::App app;
+  const auto declared = declare_all(app, commands);
+  const auto parsed = parse(app, declared, arguments, false);
+  if (!parsed.ok()) return parsed.status();
+  const DeclaredCommand* asked = selected(app, declared);
+  if (asked == nullptr) return Status::bad_usage("bad-argument", "this asks for help", "command line", "ask");
+  if (Status status = asked->arguments->convert_numbers(); !status.ok()) return status;
+  return asked->command->check();
+}
+
+}  // namespace
+
+RequestRules request_rules(CommandFactory all_commands) {
+  CLI::App app;
+  const auto commands = all_commands();
+  RequestRules rules;
+  for (const auto& declared : declare_all(app, commands)) {
+    CommandTable table = declared.arguments->table();
+    table.name = declared.command->name();
+    table.summary = declared.command->summary();
+    table.requestable = declared.command->requestable();
+    rules.commands.push_back(std::move(table));
+  }
+  rules.check = [all_commands](const std::vector<std::string>& arguments) {
+    return check_arguments(all_commands, arguments);
+  };
+  return rules;
+}
+
+Result<int> run_command_line(CommandFactory all_commands, const std::vector<std::string>& arguments) {
   CLI::App app(
       "Certified inertia of large sparse stiffness matrices: is the structure stable, how many\n"
       "buckling factors or frequencies lie below a value, and how sure is that.",
@@ -162,25 +255,16 @@ Result<int> run_command_line(const std::vector<std::unique_ptr<Command>>& comman
                        "print name and version");
   app.set_help_flag("-h,--help", kHelpOfHelp);
   app.footer(kExitCodes);
-
-  app.require_subcommand(1);
   app.get_formatter()->column_width(34);
+  const auto commands = all_commands();
   const auto declared = declare_all(app, commands);
-  try {
-    std::vector<std::string> reversed(arguments.rbegin(), arguments.rend());  // the order the parser wants
-    app.parse(std::move(reversed));
-  } catch (const CLI::Success& asked) {  // --help, --version
-    app.exit(asked);
-    return 0;
-  } catch (const CLI::ParseError& error) {
-    return usage_failure(error, app, declared);
-  }
-  for (const auto& entry : declared) {
-    if (!app.got_subcommand(entry.app)) continue;
-    if (Status status = entry.arguments->convert_numbers(); !status.ok()) return status;
-    return entry.command->run(Call{arguments});
-  }
-  return Status::internal("no command was selected");
+  const auto printed = parse(app, declared, arguments, true);
+  if (!printed.ok()) return printed.status();
+  if (*printed) return **printed;
+  const DeclaredCommand* asked = selected(app, declared);
+  if (asked == nullptr) return Status::internal("no command was selected");
+  if (Status status = asked->arguments->convert_numbers(); !status.ok()) return status;
+  return asked->command->run(Call{arguments, [all_commands] { return request_rules(all_commands); }});
 }
 
 }  // namespace stanchion::cli

@@ -3,6 +3,7 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <new>
 
 #include "cli/answer_file.hpp"
 #include "cli/certificate_file.hpp"
@@ -36,7 +37,7 @@ const char* expectations_of(Question question) {
 }
 
 void declare_output_options(Arguments& arguments, OutputOptions& options, Question question) {
-  arguments.group("Output");
+  arguments.group("Output", true);
   if (question != Question::kLocate) {
     arguments.text("--expect", options.expectation, "WHAT", expectations_of(question));
   }
@@ -71,7 +72,11 @@ void declare_output_options(Arguments& arguments, OutputOptions& options, Questi
                    "the mode shapes on the nodes, as VTK XML; needs --nodes and --dofs");
   }
   arguments.flag("--quiet", options.quiet, "no text on standard output, no progress line");
+  arguments.last().use = OptionUse::kRunner;
   arguments.text("--log", options.log, "FILE", "one line a stage; - for standard error");
+  arguments.whole("--progress-fd", options.progress_fd, "N",
+                  "progress and failures as JSON lines on this open file descriptor");
+  arguments.last().use = OptionUse::kRunner;
   arguments.text("--title", options.title, "TEXT", "printed above the answer");
   arguments.text("--reference", options.reference, "TEXT", "your own reference, printed above the answer");
 }
@@ -274,24 +279,25 @@ void QuestionCommand::declare(Arguments& arguments) {
   declare_output_options(arguments, output_, question_);
 }
 
-Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log,
+Result<Outcome> QuestionCommand::ask(const Request& request, const LogFile& log, ProgressPipe& pipe,
                                      const CancellationToken& token) const {
   // A log on the same terminal would be torn apart by the line.
   ProgressLine line(standard_error_is_terminal() && !output_.quiet && !log.to_standard_error());
   RunContext context;
   context.cancel = &token;
-  context.progress = [&line](const char* stage, double fraction) { line.update(stage, fraction); };
+  context.progress = [&line, &pipe](const char* stage, double fraction) {
+    line.update(stage, fraction);
+    pipe.update(stage, fraction);
+  };
   std::optional<SweepResults> results;
   if (output_.results) context.journal = &results.emplace(*output_.results, request);
   context.log = [&log](const std::string& text) { log.line(text); };
   return engine_(request, context);
 }
 
-Result<int> QuestionCommand::run(const Call& call) {
-  CancellationToken token;
-  const InterruptGuard guard(token);  // before anything is opened: a request to stop leaves nothing behind
+Result<Request> QuestionCommand::make_request() const {
   auto request = build_request(request_, question_);
-  if (!request.ok()) return request.status();
+  if (!request.ok()) return request;
   request->want_witness = output_.witness.has_value();
   if ((output_.vtu || output_.view) && question_ == Question::kCheck && !request->want_location) {
     return Status::bad_usage("contradiction", "a grid shows located motions, and none are asked for",
@@ -303,13 +309,44 @@ Result<int> QuestionCommand::run(const Call& call) {
       judgement->expectation && judgement->expectation->kind == Expectation::Kind::kNoneBelow;
   request->bracket.want_modes = question_ == Question::kBracket && (output_.modes || output_.vtu);
   if (Status status = check_outputs(*request, output_, question_); !status.ok()) return status;
+  return request;
+}
+
+Status QuestionCommand::check() {
+  return make_request().status();
+}
+
+Result<int> QuestionCommand::run(const Call& call) {
+  CancellationToken token;
+  const InterruptGuard guard(token);  // before anything is opened: a request to stop leaves nothing behind
+  if (output_.progress_fd && (*output_.progress_fd < 3 || *output_.progress_fd > 65535)) {
+    return Status::bad_usage("out-of-range", "this is no file descriptor to write progress to",
+                             "--progress-fd", "give one from 3 that the program was started with");
+  }
+  ProgressPipe pipe(static_cast<int>(output_.progress_fd.value_or(-1)));
+  auto code = [&]() -> Result<int> {
+    try {
+      return answer(call, pipe, token);
+    } catch (const std::bad_alloc&) {
+      return out_of_memory();
+    }
+  }();
+  if (!code.ok()) pipe.fail(code.status());
+  return code;
+}
+
+Result<int> QuestionCommand::answer(const Call& call, ProgressPipe& pipe, const CancellationToken& token) {
+  auto request = make_request();
+  if (!request.ok()) return request.status();
+  const auto judgement = build_judgement(output_, request_.symmetric_part, question_);
+  if (!judgement.ok()) return judgement.status();
   Targets targets;
   if (Status status = open_targets(output_, *request, targets); !status.ok()) return status;
   const auto log = LogFile::open(output_.log);
   if (!log.ok()) return log.status();
 
   log->line(fmt::format("{} {}: {}", program_name(), program_version(), fmt::join(call.arguments, " ")));
-  auto outcome = ask(*request, *log, token);
+  auto outcome = ask(*request, *log, pipe, token);
 
   if (!outcome.ok()) {
     log->line(outcome.status().to_string());

@@ -6,6 +6,7 @@
 #include "cli/command.hpp"
 #include "cli/request_options.hpp"
 #include "engine/pipeline.hpp"
+#include "jobs/progress_pipe.hpp"
 
 namespace stanchion::cli {
 
@@ -14,6 +15,7 @@ struct OutputOptions {
   std::optional<std::string> json, html, junit, csv, vtu, view, certificate, witness, log, title, reference,
       expectation;
   std::optional<std::string> svg, results, modes;
+  std::optional<std::int64_t> progress_fd;
   bool quiet = false;
 };
 
@@ -24,10 +26,15 @@ class QuestionCommand : public Command {
 
   const char* name() const override;
   void declare(Arguments& arguments) override;
+  bool requestable() const override { return true; }
+  Status check() override;
   Result<int> run(const Call& call) override;
 
  private:
-  Result<Outcome> ask(const Request& request, const class LogFile& log, const CancellationToken& token) const;
+  Result<Request> make_request() const;
+  Result<int> answer(const Call& call, ProgressPipe& pipe, const CancellationToken& token);
+  Result<Outcome> ask(const Request& request, const class LogFile& log, ProgressPipe& pipe,
+                      const CancellationToken& token) const;
 
   Question question_;
   Engine engine_;

@@ -16,6 +16,7 @@ void declare_matrices(Arguments& arguments, RequestOptions& options, Question qu
   arguments.positional("K", options.stiffness, "FILE",
                        "the stiffness matrix; its format is found from its content",
                        question != Question::kCheck);
+  arguments.last().key = "stiffness";
   if (question == Question::kCheck) {
     arguments.positionals("steps", options.steps, "FILE",
                           "more matrices of one pattern: a load path, in order");
@@ -26,6 +27,7 @@ void declare_matrices(Arguments& arguments, RequestOptions& options, Question qu
                    "mass M, matrix or diagonal: its total and centre are stated");
   } else if (question == Question::kCheck) {
     arguments.text("--list", options.list, "FILE", "the matrices of a load path, one path a line, in order");
+    arguments.last().use = OptionUse::kRunner;  // a request names its files one by one
   } else {
     arguments.text("--geometric", options.geometric, "FILE", "geometric stiffness G: the pencil K + f G");
     arguments.text("--mass", options.mass, "FILE", "mass M, matrix or diagonal: the pencil K - s M");
@@ -34,6 +36,7 @@ void declare_matrices(Arguments& arguments, RequestOptions& options, Question qu
   }
   arguments.texts("--add", options.added, "FILE:factor",
                   "add factor times this matrix to K (may be repeated)");
+  arguments.last().key = "added";
   arguments.flag("--symmetric-part", options.symmetric_part,
                  "judge (K + K^T)/2 of a matrix that is not symmetric");
   arguments.whole("--base", options.base, "0|1", "number of the first equation in triplet text");
@@ -67,6 +70,9 @@ void declare_numbers(Arguments& arguments, RequestOptions& options, Question que
   arguments.group("Resources");
   arguments.whole("--threads", options.threads, "N", "default: every processor available");
   arguments.text("--memory-cap", options.memory_cap, "SIZE", "stop before using more, e.g. 8G or 512M");
+  arguments.text("--analysis-store", options.analysis_store, "DIR",
+                 "find and leave elimination orders here, for other runs on the same pattern");
+  arguments.last().use = OptionUse::kRunner;
 }
 
 void declare_location(Arguments& arguments, RequestOptions& options, Question question) {
@@ -145,6 +151,7 @@ Status fill_numbers(const RequestOptions& options, Request& request) {
     }
     request.precision = *options.precision == "extended" ? Precision::kExtended : Precision::kDouble;
   }
+  request.analysis_store = options.analysis_store;
   request.resolution = options.resolution;
   request.want_location = options.locate;
   if (options.weak_below) request.locate.weak_below = *options.weak_below;
@@ -234,8 +241,8 @@ void declare_request_options(Arguments& arguments, RequestOptions& options, Ques
   declare_matrices(arguments, options, question);
   if (question == Question::kCount) {
     arguments.group("Question");
-    arguments.texts("--at", options.shifts, "s1,s2,...",
-                    "where to count (may be repeated; negative ones too)");
+    arguments.numbers("--at", options.shifts, "s1,s2,...",
+                      "where to count (may be repeated; negative ones too)");
   }
   declare_spectrum_options(arguments, options.spectrum, question);
   declare_model_files(arguments, options);

@@ -16,7 +16,7 @@ namespace stanchion::cli {
 
 struct RequestOptions {
   std::optional<std::string> stiffness, geometric, mass, dofs, nodes, axes, fix, multipliers;
-  std::optional<std::string> load_sign, memory_cap, precision;
+  std::optional<std::string> load_sign, memory_cap, precision, analysis_store;
   std::vector<std::string> added, shifts, steps;
   std::optional<std::string> list;
   std::optional<std::int64_t> base, rows, digits, threads, seed, most;

@@ -13,6 +13,11 @@ Status print_result(const std::string& text) {
                                 "send the output to a place that can take it");
 }
 
+Status out_of_memory() {
+  return Status::resource_limit("out-of-memory", "the machine gave no more memory", {},
+                                "set --memory-cap to learn the need beforehand, or use a larger machine");
+}
+
 void print_failure(const Status& failure) {
   std::fprintf(stderr, "stanchion: %s\n", failure.to_string().c_str());
 }

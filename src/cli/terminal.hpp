@@ -10,6 +10,9 @@ namespace stanchion::cli {
 /// Resource limit ("write-failed") when standard output does not take it all.
 Status print_result(const std::string& text);
 
+/// The failure that stands for std::bad_alloc.
+Status out_of_memory();
+
 /// "stanchion: place: message [code]" and the remedy, on standard error.
 void print_failure(const Status& failure);
 

@@ -12,6 +12,7 @@
 #include "engine/host.hpp"
 #include "extended/factorize.hpp"
 #include "inertia/witness.hpp"
+#include "jobs/analysis_store.hpp"
 #include "model/not_checked.hpp"
 #include "sparse/product.hpp"
 #include "sparse/scaling.hpp"
@@ -76,7 +77,7 @@ bool same_pattern(const SymmetricMatrix& pattern, const SharedAnalysis& shared) 
 
 /// The one of the matrix before, where the pattern is the same; else a new one, kept in mind for the next.
 Result<Analysis> analysis_of(const SymmetricMatrix& pattern, const std::vector<Index>& nodes,
-                             bool second_path, int workers, SharedAnalysis* shared) {
+                             const Request& request, int workers, SharedAnalysis* shared) {
   if (shared != nullptr && shared->analysis && same_pattern(pattern, *shared)) {
     ++shared->reused;
     Analysis analysis = std::move(*shared->analysis);
@@ -89,7 +90,12 @@ Result<Analysis> analysis_of(const SymmetricMatrix& pattern, const std::vector<I
     shared->row = pattern.row.clone();
     shared->analysis.reset();
   }
-  return analyse({&pattern, nodes, true, second_path}, workers);
+  // A second opinion owes nothing to what the first has left.
+  if (!request.analysis_store || request.second_path) {
+    return analyse({&pattern, nodes, true, request.second_path}, workers);
+  }
+  AnalysisStore store(*request.analysis_store);
+  return analyse({&pattern, nodes, true, false, &store}, workers);
 }
 
 Status check_cap(const Request& request, Offset needed) {
@@ -151,7 +157,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   SymmetricMatrix pattern{family.rows, std::move(family.column_start), std::move(family.row),
                           std::move(family.values[0])};
   const std::vector<Index> nodes = nodes_of(model.dofs, family.rows);
-  auto analysis = analysis_of(pattern, nodes, request.second_path, pool.size(), shared);
+  auto analysis = analysis_of(pattern, nodes, request, pool.size(), shared);
   if (!analysis.ok()) return analysis.status();
   if (context.cancel != nullptr && context.cancel->cancelled()) return Status::interrupted();
   pencil.analysis_ = std::move(*analysis);
@@ -178,6 +184,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   pencil.factor_options_.cancel = context.cancel;
 
   const StructureForecast& forecast = pencil.analysis_.forecast;
+  outcome.work.analysis_reused = outcome.work.analysis_reused || pencil.analysis_.known_order;
   outcome.timings.order += pencil.analysis_.order_seconds;
   outcome.timings.analyse += pencil.analysis_.analyse_seconds + watch.seconds();
   outcome.work.factor_flops = forecast.factor_flops;

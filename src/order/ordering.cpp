@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <vector>
 
+#include "base/digest.hpp"
 #include "order/column_counts.hpp"
 #include "order/components.hpp"
 #include "order/dissection.hpp"
@@ -102,6 +103,53 @@ Result<Buffer<Index>> order_parts(const Graph& graph, const Components& componen
   return vertex_at;
 }
 
+/// Of everything that order_parts() looks at. The first line changes whenever its rules do.
+std::string digest_of(const Graph& graph, bool other_order) {
+  Sha256 digest;
+  digest.update(other_order ? "order 1, minimum degree" : "order 1");
+  const auto add = [&digest](const auto& buffer) {
+    const auto count = static_cast<std::uint64_t>(buffer.size());
+    digest.update({reinterpret_cast<const char*>(&count), sizeof count});
+    digest.update({reinterpret_cast<const char*>(buffer.data()),
+                   static_cast<std::size_t>(buffer.size()) * sizeof(*buffer.data())});
+  };
+  add(graph.start);
+  add(graph.adjacency);
+  add(graph.weight);
+  return digest.finish();
+}
+
+bool is_permutation_of(const Buffer<Index>& order, Index vertices) {
+  if (order.size() != vertices) return false;
+  std::vector<char> seen(static_cast<std::size_t>(vertices), 0);
+  for (const Index v : order) {
+    if (v < 0 || v >= vertices || seen[static_cast<std::size_t>(v)] != 0) return false;
+    seen[static_cast<std::size_t>(v)] = 1;
+  }
+  return true;
+}
+
+/// As order_parts(), or what it found before.
+Result<Buffer<Index>> order_or_recall(const Graph& graph, const Components& components,
+                                      const OrderingInput& input, Elimination& elimination) {
+  if (input.known == nullptr) {
+    return order_parts(graph, components, input.other_order, elimination.dissected);
+  }
+  const std::string key = digest_of(graph, input.other_order);
+  if (auto found = input.known->find(key); found && is_permutation_of(found->vertex_at, graph.vertices)) {
+    elimination.known = true;
+    elimination.dissected = found->dissected;
+    return std::move(found->vertex_at);
+  }
+  auto order = order_parts(graph, components, input.other_order, elimination.dissected);
+  if (!order.ok()) {
+    input.known->give_up();
+    return order.status();
+  }
+  input.known->keep(key, {order->clone(), elimination.dissected});
+  return order;
+}
+
 std::vector<char> zero_diagonals(const SymmetricMatrix& pattern) {
   std::vector<char> zero(static_cast<std::size_t>(pattern.rows), 1);
   for (Index j = 0; j < pattern.rows; ++j) {
@@ -129,7 +177,7 @@ Result<Elimination> order_equations(const OrderingInput& input) {
   Graph coarse_graph = quotient_graph(pattern, coarse);
   const Components components = connected_components(coarse_graph);
   elimination.components = components.count;
-  auto coarse_order = order_parts(coarse_graph, components, input.other_order, elimination.dissected);
+  auto coarse_order = order_or_recall(coarse_graph, components, input, elimination);
   if (!coarse_order.ok()) return coarse_order.status();
   if (!nodes_known && !joins) {
     elimination.graph = std::move(coarse_graph);

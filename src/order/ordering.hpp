@@ -4,6 +4,7 @@
 #include <span>
 
 #include "order/graph.hpp"
+#include "order/known_orders.hpp"
 #include "order/quotient_graph.hpp"
 #include "stanchion/status.hpp"
 
@@ -14,6 +15,7 @@ struct OrderingInput {
   std::span<const Index> node_of;            ///< node number per equation (negative: none); empty: unknown
   bool zero_diagonals_join = true;           ///< keep multipliers next to a partner
   bool other_order = false;                  ///< minimum degree everywhere: a second opinion, not the fastest
+  KnownOrders* known = nullptr;              ///< orders found before; outlives the call
 };
 
 /// The elimination order on the graph of equations with identical structure.
@@ -24,6 +26,7 @@ struct Elimination {
   Buffer<Index> component_of_vertex;
   Index components = 0;
   Index dissected = 0;  ///< parts ordered by nested dissection (the others by minimum degree)
+  bool known = false;   ///< the order was found before
 };
 
 /// Orders every connected part apart; of nested dissection and minimum degree keeps the one with fewer

@@ -152,7 +152,8 @@ Json json_of(const Work& work) {
           {"largest_front", work.largest_front},
           {"delayed_pivots", work.delayed_pivots},
           {"two_by_two_pivots", work.two_by_two_pivots},
-          {"factorizations", work.factorizations}};
+          {"factorizations", work.factorizations},
+          {"analysis_reused", work.analysis_reused}};
 }
 
 /// The sentences that open the text report.

@@ -15,6 +15,7 @@ Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   auto elimination = order_equations(input);
   if (!elimination.ok()) return elimination.status();
   analysis.order_seconds = watch.seconds();
+  analysis.known_order = elimination->known;
   watch.restart();
   const SupernodeTree supernodes = build_supernodes(*elimination);
   analysis.tree = build_assembly_tree(*elimination, supernodes);

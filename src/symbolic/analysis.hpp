@@ -24,6 +24,7 @@ struct Analysis {
   Schedule schedule;
   StructureForecast forecast;
   double order_seconds = 0, analyse_seconds = 0;
+  bool known_order = false;  ///< the elimination order was found before, see OrderingInput
 };
 
 /// Orders, counts, amalgamates and schedules. Errors: those of order_equations. Reproducible; the tree does

@@ -1,0 +1,127 @@
+#include "jobs/analysis_store.hpp"
+
+#include <gtest/gtest.h>
+#include <sys/stat.h>
+
+#include <atomic>
+#include <chrono>
+#include <thread>
+
+#include "base/digest.hpp"
+#include "jobs/durable_file.hpp"
+#include "jobs/folder.hpp"
+#include "order/ordering.hpp"
+#include "support/generators.hpp"
+
+namespace stanchion {
+namespace {
+
+const std::string kKey = sha256("a key");
+
+KnownOrder order_of(std::initializer_list<Index> entries) {
+  KnownOrder order{Buffer<Index>(static_cast<Offset>(entries.size())), 1};
+  Offset k = 0;
+  for (const Index entry : entries) order.vertex_at[k++] = entry;
+  return order;
+}
+
+std::vector<Index> entries_of(const std::optional<KnownOrder>& order) {
+  return order ? std::vector<Index>(order->vertex_at.begin(), order->vertex_at.end()) : std::vector<Index>{};
+}
+
+TEST(AnalysisStore, FindsWhatWasLeftByAnother) {
+  const TestFolder folder;
+  AnalysisStore first(folder / "store");
+  EXPECT_FALSE(first.find(kKey));
+  first.keep(kKey, order_of({2, 0, 1}));
+  AnalysisStore second(folder / "store");
+  EXPECT_EQ(entries_of(second.find(kKey)), (std::vector<Index>{2, 0, 1}));
+  EXPECT_FALSE(second.find(sha256("another key")));
+}
+
+TEST(AnalysisStore, PassesOverEveryDamagedFile) {
+  const TestFolder folder;
+  AnalysisStore store(folder.path());
+  (void)store.find(kKey);
+  store.keep(kKey, order_of({2, 0, 1}));
+  const std::string good = *read_whole(store.path_of(kKey));
+  for (std::size_t k = 0; k < good.size(); ++k) {
+    std::string bad = good;
+    bad[k] = static_cast<char>(bad[k] ^ 1);
+    ASSERT_TRUE(write_durably(store.path_of(kKey), bad).ok());
+    EXPECT_FALSE(store.find(kKey)) << "byte " << k;
+    store.give_up();
+    ASSERT_TRUE(write_durably(store.path_of(kKey), good.substr(0, k)).ok());
+    EXPECT_FALSE(store.find(kKey)) << "cut at " << k;
+    store.give_up();
+  }
+  // A file under another's name.
+  ASSERT_TRUE(write_durably(store.path_of(kKey), good).ok());
+  EXPECT_TRUE(store.find(kKey));
+}
+
+TEST(AnalysisStore, WaitsForWhoeverIsFindingTheSame) {
+  const TestFolder folder;
+  AnalysisStore first(folder.path());
+  ASSERT_FALSE(first.find(kKey));
+  std::atomic<bool> found{false};
+  std::vector<Index> entries;
+  std::thread other([&] {
+    AnalysisStore second(folder.path());
+    entries = entries_of(second.find(kKey));
+    found = true;
+  });
+  std::this_thread::sleep_for(std::chrono::milliseconds(100));
+  EXPECT_FALSE(found);
+  first.keep(kKey, order_of({1, 0}));
+  other.join();
+  EXPECT_EQ(entries, (std::vector<Index>{1, 0}));
+}
+
+TEST(AnalysisStore, WithoutAWritableFolderEveryRunFindsItsOwn) {
+  const TestFolder folder;
+  folder.write("file", "not a folder");
+  AnalysisStore store(folder / "file/store");
+  EXPECT_FALSE(store.find(kKey));
+  store.keep(kKey, order_of({0}));
+  EXPECT_FALSE(store.find(kKey));
+}
+
+/// Returns whatever it is told to.
+class PlantedOrders : public KnownOrders {
+ public:
+  std::optional<KnownOrder> find(const std::string&) override { return KnownOrder{planted.clone(), 0}; }
+  void keep(const std::string&, const KnownOrder&) override { ++kept; }
+  void give_up() override {}
+  Buffer<Index> planted;
+  int kept = 0;
+};
+
+TEST(AnalysisStore, AnOrderThatIsNoPermutationIsNotUsed) {
+  const SymmetricMatrix matrix = test::laplacian(40, 1, 1);
+  const auto plain = order_equations({&matrix, {}});
+  ASSERT_TRUE(plain.ok());
+  const Index vertices = plain->graph.vertices;
+  PlantedOrders orders;
+  for (const int kind : {0, 1, 2, 3}) {
+    orders.planted = Buffer<Index>(kind == 0 ? vertices - 1 : vertices);
+    for (Offset k = 0; k < orders.planted.size(); ++k) orders.planted[k] = static_cast<Index>(k);
+    if (kind == 1) orders.planted[1] = 0;
+    if (kind == 2) orders.planted[3] = -1;
+    if (kind == 3) orders.planted[3] = vertices;
+    const auto order = order_equations({&matrix, {}, true, false, &orders});
+    ASSERT_TRUE(order.ok());
+    EXPECT_FALSE(order->known);
+    EXPECT_EQ(orders.kept, kind + 1);
+    EXPECT_TRUE(std::equal(order->vertex_at.begin(), order->vertex_at.end(), plain->vertex_at.begin()));
+  }
+  orders.planted = Buffer<Index>(vertices);
+  for (Index v = 0; v < vertices; ++v) orders.planted[v] = vertices - 1 - v;
+  const auto order = order_equations({&matrix, {}, true, false, &orders});
+  ASSERT_TRUE(order.ok());
+  EXPECT_TRUE(order->known);
+  EXPECT_EQ(order->vertex_at[0], vertices - 1);
+}
+
+}  // namespace
+}  // namespace stanchion
