@@ -26,7 +26,7 @@ class Command {
   /// Jobs may ask for it.
   virtual bool requestable() const { return false; }
   /// What is wrong with the options as a whole, without reading a file; run() says it as well.
-  virtual Status check() { return {}; }
+  virtual Status check_options() { return {}; }
   /// Does the work and prints; returns the exit code, or the failure for the caller to print.
   virtual Result<int> run(const Call& call) = 0;
 };
