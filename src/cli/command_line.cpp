@@ -224,7 +224,7 @@ Status check_arguments(CommandFactory all_commands, const std::vector<std::strin
   const DeclaredCommand* asked = selected(app, declared);
   if (asked == nullptr) return Status::bad_usage("bad-argument", "this asks for help", "command line", "ask");
   if (Status status = asked->arguments->convert_numbers(); !status.ok()) return status;
-  return asked->command->check();
+  return asked->command->check_options();
 }
 
 }  // namespace

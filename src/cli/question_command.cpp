@@ -312,7 +312,7 @@ Result<Request> QuestionCommand::make_request() const {
   return request;
 }
 
-Status QuestionCommand::check() {
+Status QuestionCommand::check_options() {
   return make_request().status();
 }
 

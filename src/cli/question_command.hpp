@@ -27,7 +27,7 @@ class QuestionCommand : public Command {
   const char* name() const override;
   void declare(Arguments& arguments) override;
   bool requestable() const override { return true; }
-  Status check() override;
+  Status check_options() override;
   Result<int> run(const Call& call) override;
 
  private:
