@@ -2,6 +2,7 @@
 // by whoever makes one.
 
 import { el, svg, announce } from "./dom.js";
+import { grouped } from "./words.js";
 
 /// 1, 2 or 5 times a power of ten, so that about `many` of them span `range`.
 export function tick_step(range, many) {
@@ -22,6 +23,7 @@ export function ticks(low, high, many) {
 export function tick_text(value, step) {
   const digits = Math.max(0, -Math.floor(Math.log10(step) + 1e-9));
   if (digits > 8 || Math.abs(value) >= 1e7) return Number(value.toPrecision(6)).toString();
+  if (digits === 0) return grouped(value).replace(/^-0$/, "0");
   return value.toFixed(digits).replace(/^-(0(\.0*)?)$/, "$1");
 }
 

@@ -4,8 +4,11 @@ import { el, svg, facts, table } from "./dom.js";
 import { AxisChart } from "./axis_chart.js";
 import { backing, exact, rounded } from "./words.js";
 
-export function bracket_sentence(value) {
-  return `${value.multiplicity === 1 ? "One value" : `${value.multiplicity} values`} between ${exact(value.low)} and ${exact(value.high)}`;
+const short = (number) => exact(Number(number.toPrecision(11)));
+
+export function bracket_sentence(value, hertz = false) {
+  const { low, high } = hertz ? value.hertz : value;
+  return `${value.multiplicity === 1 ? "One value" : `${value.multiplicity} values`} between ${exact(low)} and ${exact(high)}${hertz ? " hertz" : ""}`;
 }
 
 function relative_width(value) {
@@ -13,44 +16,50 @@ function relative_width(value) {
   return size > 0 ? (value.high - value.low) / size : value.high - value.low;
 }
 
+/// Frequencies where hertz were asked, values of the pencil otherwise: {value, low, high} as they are drawn.
+function drawn(value, hertz) {
+  return hertz ? value.hertz : value;
+}
+
 export class Brackets {
   constructor(critical, complete, axis) {
     this.critical = critical;
-    this.complete = complete;
-    const ends = critical.flatMap((value) => [value.low, value.high]);
-    if (complete) ends.push(complete.from, complete.to);
+    this.hertz = critical.length > 0 && critical.every((value) => value.hertz);
+    const hertz_of = (s) => Math.sign(s) * Math.sqrt(Math.abs(s)) / (2 * Math.PI);
+    this.complete = complete && this.hertz ? { from: hertz_of(complete.from), to: hertz_of(complete.to) } : complete;
+    const ends = critical.flatMap((value) => [drawn(value, this.hertz).low, drawn(value, this.hertz).high]);
+    if (this.complete) ends.push(this.complete.from, this.complete.to);
     let low = Math.min(...ends), high = Math.max(...ends);
     if (!(high > low)) { low -= 1; high += 1; }
     const rim = (high - low) * 0.04;
     this.most = Math.max(1, ...critical.map((value) => value.multiplicity));
     this.chart = new AxisChart({
-      label: `Brackets: ${critical.length} intervals`, axis, all: [low - rim, high + rim], height: 250,
-      items: () => critical.map((value) => ({ at: value.value, value, say: () => bracket_sentence(value) })),
+      label: `Brackets: ${critical.length} intervals`, axis: this.hertz ? "frequency in hertz" : axis, all: [low - rim, high + rim], height: 250,
+      items: () => critical.map((value) => ({ at: drawn(value, this.hertz).value, value, say: () => bracket_sentence(value, this.hertz) })),
       draw: (chart) => this.draw(chart), card: (item) => this.card(item.value), on_axis_click: null,
     });
-    const hertz = critical.some((value) => value.hertz !== null && value.hertz !== undefined);
-    const head = ["value", "low", "high", "times", "backed by"];
-    if (hertz) head.splice(3, 0, "hertz");
     this.element = el("figure", { class: "figure" }, this.chart.element,
       el("figcaption", { class: "legend" }, "Each bar is a proved interval, as high as the number of values in it. Zoom in to see its width.",
-        complete ? ` The line below the bars is the range in which no other value exists.` : ""),
-      el("details", { open: critical.length <= 24 }, el("summary", null, "The brackets as a table"),
-        table("Brackets", head, critical.map((value) => {
-          const row = [exact(Number(value.value.toPrecision(11))), exact(value.low), exact(value.high), value.multiplicity,
-            backing(value.level, value.failure_probability) + (value.rigid_body ? "; rigid body" : "")];
-          if (hertz) row.splice(3, 0, this.hertz(value));
-          return row;
-        }), hertz ? 5 : 4)));
+        complete ? " The line below the bars is the range in which no other value exists." : ""),
+      el("details", { open: critical.length <= 24 }, el("summary", null, "The brackets as a table"), this.table()));
   }
 
-  hertz(value) {
-    return value.hertz ? exact(Number(value.hertz.value.toPrecision(10))) : "";
+  table() {
+    const head = this.hertz ? ["hertz", "low", "high", "times", "s", "backed by"] : ["value", "low", "high", "times", "backed by"];
+    return table("Brackets", head, this.critical.map((value) => {
+      const { value: middle, low, high } = drawn(value, this.hertz);
+      const backed = backing(value.level, value.failure_probability) + (value.rigid_body ? "; rigid body" : "");
+      const row = [short(middle), exact(low), exact(high), value.multiplicity];
+      return this.hertz ? [...row, short(value.value), backed] : [...row, backed];
+    }), head.length - 1);
   }
 
   card(value) {
+    const { value: middle, low, high } = drawn(value, this.hertz);
     return el("div", { class: "card" },
-      el("p", { class: "card-title" }, el("strong", null, exact(Number(value.value.toPrecision(11)))), value.multiplicity > 1 ? `, ${value.multiplicity} times` : ""),
-      facts([["certainly in", `[${exact(value.low)}, ${exact(value.high)}]`], ["relative width", rounded(relative_width(value))],
+      el("p", { class: "card-title" }, el("strong", null, `${short(middle)}${this.hertz ? " Hz" : ""}`), value.multiplicity > 1 ? `, ${value.multiplicity} times` : ""),
+      facts([["certainly in", `[${exact(low)}, ${exact(high)}]`], this.hertz ? ["s in", `[${exact(value.low)}, ${exact(value.high)}]`] : null,
+        ["relative width", rounded(relative_width(value))],
         ["backed by", `${backing(value.level, value.failure_probability)}, from ${value.proof === "residual" ? "residuals and counts" : "counts"}`]]));
   }
 
@@ -62,7 +71,8 @@ export class Brackets {
       if (b > a) parts.push(chart.path(`M${a} ${chart.base - 9}v6M${a} ${chart.base - 6}H${b}M${b} ${chart.base - 9}v6`, "complete"));
     }
     this.critical.forEach((value, k) => {
-      const low = chart.x(value.low), high = chart.x(value.high);
+      const ends = drawn(value, this.hertz);
+      const low = chart.x(ends.low), high = chart.x(ends.high);
       if (high < chart.left || low > right) return;
       const width = Math.max(5, high - low), middle = (low + high) / 2;
       const tall = value.multiplicity / this.most * (floor - chart.top - 18);

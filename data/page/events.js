@@ -47,21 +47,10 @@ export class EventStream {
     this.handlers = handlers;
     this.pause = 500;
     this.last_id = "";
-    this.closed = false;
     this.attempt = 0;
   }
 
-  start() {
-    if (!this.closed) this.run();
-  }
-
-  stop() {
-    this.closed = true;
-    clearTimeout(this.timer);
-    this.abort?.abort();
-  }
-
-  /// Without waiting for the pause to end.
+  /// Begins, or begins anew without waiting for the pause to end.
   again() {
     clearTimeout(this.timer);
     this.abort?.abort();
@@ -104,7 +93,7 @@ export class EventStream {
       }
     }
     clearTimeout(this.watchdog);
-    if (this.closed || attempt !== this.attempt || !retry) return;
+    if (attempt !== this.attempt || !retry) return;
     const wait = this.pause;
     this.pause = Math.min(LONGEST_PAUSE, this.pause * 2);
     this.handlers.state("lost", wait / 1000);

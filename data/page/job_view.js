@@ -123,7 +123,7 @@ export class JobView {
     const { job } = this;
     const standing = standing_of(job);
     const words = result?.in_words ?? [];
-    const lead = words[0] ?? job.headline ?? (standing === "failed" ? job.problem?.title ?? "Failed" : `${COMMANDS[job.command] ?? job.command}`);
+    const lead = words[0] ?? job.headline ?? (standing === "failed" ? "This question has no answer" : `${COMMANDS[job.command] ?? job.command}`);
     const key = JSON.stringify([standing, lead, words.length, job.cancelling]);
     if (this.head_key === `${job.id}${key}`) return;
     this.head_key = `${job.id}${key}`;
@@ -179,7 +179,8 @@ export class JobView {
     if (result.gaps) parts.push(this.audit_part(result));
     if (result.steps) parts.push(this.path_part(result));
     if (result.forecast) parts.push(this.forecast_part(result));
-    if (result.sentences?.length && !result.in_words.includes(result.sentences[0])) parts.push(band("What follows", el("ul", null, result.sentences.map((text) => el("li", null, text)))));
+    const follows = (result.sentences ?? []).filter((text) => !result.in_words.includes(text));
+    if (follows.length) parts.push(band("What follows", el("ul", null, follows.map((text) => el("li", null, text)))));
     if (result.local_accuracy) parts.push(band("Local accuracy", histogram(result.local_accuracy)));
     parts.push(this.certificate_band(result));
     parts.push(band("Not checked", result.not_checked.length ? el("ul", { class: "not-checked" }, result.not_checked.map((text) => el("li", null, text))) : null));
@@ -204,7 +205,7 @@ export class JobView {
         c.inertia ? ["inertia", `${grouped(c.inertia.negative)} negative, ${grouped(c.inertia.zero)} zero, ${grouped(c.inertia.positive)} positive; backed by ${backing(c.inertia_level, c.inertia_failure_probability)}`] : null,
         c.negative_range ? ["negative", `between ${grouped(c.negative_range[0])} and ${grouped(c.negative_range[1])}`] : null]));
     }
-    for (const [name, range] of [["no other value", result.complete], ["on the other side", result.other_side], ["the list\u2019s range", result.range]]) {
+    for (const [name, range] of [["in the whole range", result.complete], ["on the other side", result.other_side], ["the list\u2019s range", result.range]]) {
       if (range && range.from !== undefined) parts.push(facts([[name, `${range.count ?? range.counted ?? "?"} between ${exact(range.from)} and ${exact(range.to)}${range.level ? `, backed by ${backing(range.level, range.failure_probability)}` : ""}`]]));
     }
     if (result.counts) parts.push(el("details", null, el("summary", null, `The certificate of each of the ${grouped(result.counts.length)} counts`),

@@ -135,7 +135,8 @@ const stream = new EventStream(api, {
     let document_of;
     try { document_of = JSON.parse(data); } catch { return; }
     if (type === "job") {
-      if (!book.by_id.has(document_of.id)) book.total += 1;
+      const newest = book.order[0]?.created ?? "";
+      if (!book.by_id.has(document_of.id) && document_of.created >= newest) book.total += 1;
       book.put(document_of);
       view.take(document_of);
     } else if (type === "removed") book.remove(document_of.id);

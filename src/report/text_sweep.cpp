@@ -61,7 +61,13 @@ void write_jumps(Page& page, const Outcome& outcome) {
   const std::vector<Jump>& jumps = outcome.sweep->jumps;
   const std::string who = what(*outcome.count);
   if (jumps.empty()) {
-    page.sentence(fmt::format("The count does not change: no {} in the range of the sweep.", who));
+    if (who != "negative directions") {
+      page.sentence(fmt::format("The count does not change: no {} in the range of the sweep.", who));
+    } else {
+      page.sentence(
+          "The number of negative directions is the same at every shift of the sweep; in between it may "
+          "differ, for this is no count of values.");
+    }
     return;
   }
   Index sum = 0;

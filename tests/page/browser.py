@@ -88,7 +88,7 @@ class Browser:
             raise RuntimeError(detail.get("exception", {}).get("description", detail["text"]) + "\nin: " + script[:300])
         return answer["result"].get("value")
 
-    def wait(self, script, seconds=int(os.environ.get("STANCHION_PATIENCE", "20")), what=None):
+    def wait(self, script, seconds=int(os.environ.get("STANCHION_PATIENCE", "60")), what=None):
         """Until the expression is true; returns its value."""
         end = time.monotonic() + seconds
         while True:

@@ -54,7 +54,7 @@ class Service:
         self.jobs, self.folder, self.count, self.events = {}, pathlib.Path(tempfile.mkdtemp(prefix="page_stand_in_")), 0, 0
         begin = time.time() - made_up
         for k in range(made_up):
-            job = self.new_job({"command": ("check", "count", "sweep", "locate")[k % 4], "inputs": {}, "options": {"title": f"Variant {k}"}}, begin + k)
+            job = self.new_job({"command": ("check", "count", "sweep", "locate")[k % 4], "inputs": {"stiffness": "made/up.mtx"}, "options": {"title": f"Variant {k}"}}, begin + k)
             job.update(state=("done", "done", "failed", "cancelled", "done")[k % 5], exit_code=(0, 1, None, None, 3)[k % 5],
                        headline=f"Answer number {k} of a long series of variants of the same model.", started=job["created"], finished=job["created"])
 

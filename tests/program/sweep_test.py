@@ -107,6 +107,9 @@ class SweepTest(ProgramTest):
         self.assertIn("stiffness-not-definite", [warning["code"] for warning in document["warnings"]])
         self.assertTrue(all("negative directions" in count["meaning"] for count in document["counts"]))
         self.assertIn(-1, [jump["count"] for jump in document["jumps"]])
+        document = self.expect(0, "sweep", path, "--geometric", geometric, "--from", 0.45, "--to", 0.9, "--points", 3)
+        self.assertEqual(([count["below"] for count in document["counts"]], document["jumps"]), ([1, 1, 1], []))
+        self.assertIn("The number of negative directions is the same at every shift", " ".join(document["in_words"]))
 
     def test_bad_questions(self):
         for arguments, code in ((("--from", 1), "missing-argument"), (("--from", 2, "--to", 1), "out-of-range"),
