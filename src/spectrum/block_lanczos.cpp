@@ -15,6 +15,9 @@ constexpr Index kDense = 320;  ///< up to so many rows the whole space is taken
 constexpr Offset kPieces =
     16;  ///< of the rows, each with sums of its own: the same for any number of threads
 
+constexpr Offset kRows = 64;     ///< of the basis at a time, as many as the kernels take
+constexpr Index kColumns = 256;  ///< of the basis at a time: their sums stay in the nearest cache
+
 std::size_t at(Offset i) {
   return static_cast<std::size_t>(i);
 }
@@ -38,6 +41,23 @@ std::vector<double> cholesky(std::vector<double> gram) {
     }
   }
   return r;
+}
+
+/// Entry (row k, column j) of R^-1 at k * 8 + j; rows and columns without a pivot are zero.
+std::vector<double> inverse_of(const std::vector<double>& r) {
+  constexpr Index kV = kBlockVectors;
+  std::vector<double> inverse(kV * kV, 0.0);
+  for (Index j = 0; j < kV; ++j) {
+    if (r[at(j * kV + j)] == 0) continue;
+    inverse[at(j * kV + j)] = 1 / r[at(j * kV + j)];
+    for (Index k = j - 1; k >= 0; --k) {
+      if (r[at(k * kV + k)] == 0) continue;
+      double sum = 0;
+      for (Index l = k + 1; l <= j; ++l) sum += r[at(l * kV + k)] * inverse[at(l * kV + j)];
+      inverse[at(k * kV + j)] = -sum / r[at(k * kV + k)];
+    }
+  }
+  return inverse;
 }
 
 }  // namespace
@@ -99,13 +119,19 @@ void BlockLanczos::draw(double* block) {
   });
 }
 
-/// coefficients (columns x 8, column-major) := Q^T block.
-void BlockLanczos::project(const double* block, std::vector<double>& coefficients) const {
+/// coefficients := Q^T block over the columns from `first` on, 8 doubles a column, zero before.
+void BlockLanczos::project(const double* block, Index first, std::vector<double>& coefficients) const {
   const std::size_t size = at(Offset{columns_} * kV);
   std::vector<double> parts(size * at(kPieces), 0.0);
   for_pieces([&](Offset begin, Offset end, Offset piece) {
-    gemm_nt(columns_, kV, static_cast<Index>(end - begin), 1, basis_.data() + begin * most_columns_,
-            most_columns_, block + begin * kV, kV, 0, parts.data() + at(piece) * size, columns_);
+    for (Offset row = begin; row < end; row += kRows) {
+      const auto rows = static_cast<Index>(std::min(kRows, end - row));
+      for (Index c = first; c < columns_; c += kColumns) {
+        block_kernels().of_double.times_block(basis_.data() + row * most_columns_ + c, most_columns_,
+                                              std::min(kColumns, columns_ - c), rows, block + row * kV,
+                                              parts.data() + at(piece) * size + Offset{c} * kV);
+      }
+    }
   });
   coefficients.assign(size, 0.0);
   for (std::size_t piece = 0; piece < at(kPieces); ++piece) {
@@ -113,12 +139,56 @@ void BlockLanczos::project(const double* block, std::vector<double>& coefficient
   }
 }
 
-/// block := block - Q coefficients.
-void BlockLanczos::subtract(double* block, const std::vector<double>& coefficients) const {
+/// block := block - Q coefficients, over the columns from `first` on.
+void BlockLanczos::take(double* block, const std::vector<double>& coefficients, Index first) const {
+  std::vector<double> negative = coefficients;
+  for (double& entry : negative) entry = -entry;
   for_pieces([&](Offset begin, Offset end, Offset) {
-    gemm_tn(kV, static_cast<Index>(end - begin), columns_, -1, coefficients.data(), columns_,
-            basis_.data() + begin * most_columns_, most_columns_, 1, block + begin * kV, kV);
+    for (Offset row = begin; row < end; row += kRows) {
+      const auto rows = static_cast<Index>(std::min(kRows, end - row));
+      for (Index c = first; c < columns_; c += kColumns) {
+        block_kernels().of_double.transposed_times_block(
+            basis_.data() + row * most_columns_ + c, most_columns_, std::min(kColumns, columns_ - c), rows,
+            negative.data() + Offset{c} * kV, block + row * kV);
+      }
+    }
   });
+}
+
+/// Whether so much of a column was taken away that what is left may not be orthogonal to working accuracy
+/// (twice is enough: Kahan; Parlett, 6.9).
+bool BlockLanczos::much_was_taken(const double* block, const std::vector<double>& taken) const {
+  std::vector<double> parts(at(kPieces) * kV, 0.0);
+  for_pieces([&](Offset begin, Offset end, Offset piece) {
+    double* own = parts.data() + at(piece) * kV;
+    for (Offset i = begin; i < end; ++i) {
+      for (Index v = 0; v < kV; ++v) own[v] += block[i * kV + v] * block[i * kV + v];
+    }
+  });
+  for (Index v = 0; v < kV; ++v) {
+    double left = 0, gone = 0;
+    for (Offset piece = 0; piece < kPieces; ++piece) left += parts[at(piece * kV + v)];
+    for (Index k = 0; k < columns_; ++k)
+      gone += taken[at(Offset{k} * kV + v)] * taken[at(Offset{k} * kV + v)];
+    if (!(gone <= left)) return true;
+  }
+  return false;
+}
+
+/// Makes `block` orthogonal to the basis and adds what is taken to `coefficients` (8 doubles a column). The
+/// columns from `recent` on, where most of it lies, come first and by themselves.
+void BlockLanczos::orthogonalise(double* block, Index recent, std::vector<double>& coefficients) const {
+  coefficients.assign(at(Offset{columns_} * kV), 0.0);
+  std::vector<double> taken;
+  const auto once = [&](Index first) {
+    project(block, first, taken);
+    take(block, taken, first);
+    for (std::size_t k = 0; k < taken.size(); ++k) coefficients[k] += taken[k];
+  };
+  if (columns_ == 0) return;
+  if (recent > 0) once(recent);
+  once(0);
+  if (much_was_taken(block, taken)) once(0);
 }
 
 /// Makes the columns of `block`, orthogonal to the basis already, orthonormal. Columns that vanish are
@@ -140,20 +210,16 @@ void BlockLanczos::orthonormalise(double* block, std::vector<double>* triangle) 
       for (std::size_t k = 0; k < kV * kV; ++k) gram[k] += parts[piece * kV * kV + k];
     }
     const std::vector<double> r = cholesky(gram);
-    // block := block R^-1 where the pivot is there.
+    // block := block R^-1, columns without a pivot zero; the second round mends what the inverse loses.
+    const std::vector<double> inverse = inverse_of(r);
     for_pieces([&](Offset begin, Offset end, Offset) {
       for (Offset i = begin; i < end; ++i) {
         double* row = block + i * kV;
-        for (Index j = 0; j < kV; ++j) {
-          const double pivot = r[at(j * kV + j)];
-          if (pivot == 0) {
-            row[j] = 0;
-            continue;
-          }
-          double sum = row[j];
-          for (Index k = 0; k < j; ++k) sum -= row[k] * r[at(j * kV + k)];
-          row[j] = sum / pivot;
+        double sum[kV] = {};
+        for (Index k = 0; k < kV; ++k) {
+          for (Index j = 0; j < kV; ++j) sum[j] += row[k] * inverse[at(k * kV + j)];
         }
+        std::copy(sum, sum + kV, row);
       }
     });
     if (!replaced) {
@@ -172,10 +238,7 @@ void BlockLanczos::orthonormalise(double* block, std::vector<double>* triangle) 
     if (missing == 0 || rows_ < columns_ + kV + kV || ++draws > 4) continue;
     std::vector<double> fresh(at(Offset{rows_} * kV)), coefficients;
     draw(fresh.data());
-    for (int pass = 0; pass < 2 && columns_ > 0; ++pass) {
-      project(fresh.data(), coefficients);
-      subtract(fresh.data(), coefficients);
-    }
+    orthogonalise(fresh.data(), 0, coefficients);
     for (Index i = 0; i < rows_; ++i) {
       for (Index j = 0; j < kV; ++j) {
         if (r[at(j * kV + j)] == 0) block[Offset{i} * kV + j] = fresh[at(Offset{i} * kV + j)];
@@ -206,16 +269,12 @@ bool BlockLanczos::step(const KeptValues& keep) {
   std::vector<double> block = next_;
   apply_(block.data());
   ++steps_;
-  std::vector<double> coefficients, again;
-  project(block.data(), coefficients);
-  subtract(block.data(), coefficients);
-  project(block.data(), again);
-  subtract(block.data(), again);
-  for (std::size_t k = 0; k < coefficients.size(); ++k) coefficients[k] += again[k];
+  std::vector<double> coefficients;
+  orthogonalise(block.data(), std::max(columns_ - 2 * kV, 0), coefficients);
   for (Index v = 0; v < kV; ++v) {
     const Index column = columns_ - kV + v;
     for (Index i = 0; i < columns_; ++i) {
-      const double entry = coefficients[at(Offset{v} * columns_ + i)];
+      const double entry = coefficients[at(Offset{i} * kV + v)];
       projected_[at(Offset{column} * most_columns_ + i)] = entry;
       projected_[at(Offset{i} * most_columns_ + column)] = entry;
     }
@@ -228,10 +287,7 @@ bool BlockLanczos::step(const KeptValues& keep) {
 void BlockLanczos::inject() {
   std::vector<double> coefficients;
   draw(next_.data());
-  for (int pass = 0; pass < 2 && columns_ > 0; ++pass) {
-    project(next_.data(), coefficients);
-    subtract(next_.data(), coefficients);
-  }
+  orthogonalise(next_.data(), 0, coefficients);
   orthonormalise(next_.data(), nullptr);
 }
 

@@ -27,7 +27,7 @@ struct KeptValues {
 };
 
 /// Blocks of eight vectors, so that the operator reads its factor once for all of them and clusters of up to
-/// eight come out together; every new block is orthogonalised twice against the whole basis (Golub and
+/// eight come out together; every new block is orthogonalised against the whole basis (Golub and
 /// Underwood 1977; Parlett, The Symmetric Eigenvalue Problem, 1998, ch. 13). When the basis is full it is
 /// reduced to the best approximations (thick restart; Wu and Simon, SIAM J. Matrix Anal. 22 (2000)). Same
 /// bits for any number of threads.
@@ -60,8 +60,10 @@ class BlockLanczos {
  private:
   static constexpr Index kV = kBlockVectors;
   void draw(double* block);
-  void project(const double* block, std::vector<double>& coefficients) const;
-  void subtract(double* block, const std::vector<double>& coefficients) const;
+  void project(const double* block, Index first, std::vector<double>& coefficients) const;
+  void take(double* block, const std::vector<double>& coefficients, Index first) const;
+  bool much_was_taken(const double* block, const std::vector<double>& taken) const;
+  void orthogonalise(double* block, Index recent, std::vector<double>& coefficients) const;
   void orthonormalise(double* block, std::vector<double>* triangle);
   void take_whole_space();
   void append(const double* block);
