@@ -94,7 +94,8 @@ class Audit {
   void choose_range(double low, double high) {
     const bool factors = request_.pencil == Pencil::kGeometric;
     const auto beyond = [](double end, int direction) { return end + direction * kBeyond * std::fabs(end); };
-    from_ = factors ? (low > 0 ? 0 : beyond(low, -1)) : -INFINITY;
+    const double lowest = counter_.kind() == CountKind::kAbove ? counter_.origin() : -INFINITY;
+    from_ = factors ? (low > 0 ? 0 : beyond(low, -1)) : lowest;
     to_ = factors && high < 0 ? 0 : beyond(high, 1);
     if (asked_.from) from_ = shift_of(*asked_.from, asked_.unit);
     if (asked_.to) to_ = shift_of(*asked_.to, asked_.unit);
@@ -142,7 +143,7 @@ class Audit {
     CountRunner runner(counter_, context_, pool_, outcome_);
     if (Status status = runner.open(); !status.ok()) return status;
     std::vector<double> shifts = shifts_in_gaps(clusters_, from_, to_);
-    if (!std::isfinite(shifts.front())) shifts.erase(shifts.begin());
+    if (from_nothing()) shifts.erase(shifts.begin());
     const auto warnings = outcome_.warnings.size();
     auto counts = runner.run(shifts);
     if (!counts.ok()) return counts.status();
@@ -151,10 +152,19 @@ class Audit {
     return {};
   }
 
+  /// Nothing is counted below the range: its lower end needs no count.
+  bool from_nothing() const {
+    return !std::isfinite(from_) || (counter_.kind() == CountKind::kAbove && from_ == counter_.origin());
+  }
+
   void compare_counts(const std::vector<ShiftCount>& counts) {
     answer_.proof = "counts in every gap of the list";
     std::vector<CountFact> facts;
-    if (!std::isfinite(from_)) facts.push_back({from_, 0, 0, std::nullopt, Level::kProved, 0});
+    if (!std::isfinite(from_)) {
+      facts.push_back({from_, 0, 0, std::nullopt, Level::kProved, 0});
+    } else if (from_nothing()) {
+      facts.push_back(counter_.fact_at_origin());
+    }
     for (const ShiftCount& count : counts) {
       const auto fact = counter_.fact(count);
       // A shift of ours that cannot tell is left out: the clusters on its two sides are then judged together.

@@ -15,8 +15,7 @@ class Bisection {
  public:
   Bisection(PencilCounter& counter, const Request& request, Staircase known, Outcome& outcome)
       : counter_(counter), request_(request), staircase_(std::move(known)), outcome_(outcome) {
-    // K definite: no value lies between 0 and 0.
-    if (counter.two_sided()) staircase_.add({0, 0, 0, std::nullopt, counter.base().level, base_failure()});
+    if (counter.kind() != CountKind::kBelow) staircase_.add(counter.fact_at_origin());
   }
 
   Result<FoundRange> run(const ValueRange& range, std::optional<Index> first, bool negative) {
@@ -39,8 +38,6 @@ class Bisection {
  private:
   using Numbers =
       std::pair<Offset, Offset>;  ///< half open; value number k lies where n grows from k - 1 to k
-
-  double base_failure() const { return counter_.base().failure_probability.value_or(0); }
 
   /// The fact at a shift, counted once; nothing when nothing is certified there.
   Result<std::optional<CountFact>> fact_at(double shift) {
@@ -109,6 +106,7 @@ class Bisection {
 
   /// A fact with no value below it, from `shift` (0 or less) outwards.
   Result<std::optional<CountFact>> fact_below_everything(double shift) {
+    if (counter_.kind() == CountKind::kAbove) return std::optional<CountFact>(counter_.fact_at_origin());
     for (int k = 0; k < kMostDoublings; ++k) {
       auto fact = fact_at(shift);
       if (!fact.ok()) return fact.status();
@@ -211,7 +209,8 @@ class Bisection {
       }
     }
     if (!high || (range.high && range.low && !low)) return;
-    const double from = low ? low->shift : -INFINITY;
+    const double nothing_below = counter_.kind() == CountKind::kAbove ? counter_.origin() : -INFINITY;
+    const double from = low ? low->shift : nothing_below;
     found.complete = counted_range(low, *high, from, high->shift);
     if (!low && !range.low) found.complete->count = static_cast<Index>(high->least);
   }

@@ -24,7 +24,7 @@ Result<Outcome> count_model(ModelInput model, const Request& request, const RunC
   outcome.count.emplace();
   PencilCounter counter(request, context, pool, outcome);
   if (Status status = counter.prepare(std::move(model)); !status.ok()) return status;
-  if (Status status = counter.judge(true); !status.ok()) return status;
+  if (Status status = counter.judge(); !status.ok()) return status;
   for (const double shift : request.shifts) {
     auto count = counter.count(shift);
     if (!count.ok()) return count.status();

@@ -116,7 +116,7 @@ Status PencilCounter::prepare(ModelInput model) {
   return {};
 }
 
-Status PencilCounter::judge(bool any_origin) {
+Status PencilCounter::judge() {
   if (request_.pencil == Pencil::kStiffness) {
     kind_ = CountKind::kBelow;
     return {};
@@ -128,7 +128,7 @@ Status PencilCounter::judge(bool any_origin) {
     kind_ = mass_semidefinite_ ? CountKind::kBelow : CountKind::kDirections;
     return {};
   }
-  return judge_stiffness(any_origin);
+  return judge_stiffness();
 }
 
 void PencilCounter::accept_definite(const Certificate& why) {
@@ -194,7 +194,7 @@ Result<CertifiedInertia> PencilCounter::certify_apart(ModelInput part) {
 }
 
 /// K certified definite makes counts of factors between 0 and f; anything else is said first.
-Status PencilCounter::judge_stiffness(bool any_origin) {
+Status PencilCounter::judge_stiffness() {
   auto definite = pencil_->certify(0, true, data_error(*pencil_, 0), pool_, outcome_);
   if (!definite.ok()) return definite.status();
   stiffness_ = *definite;
@@ -212,11 +212,9 @@ Status PencilCounter::judge_stiffness(bool any_origin) {
   }
   kind_ = CountKind::kDirections;
   if (request_.pencil == Pencil::kMass) {
-    if (any_origin) {
-      auto found = look_for_origin();
-      if (!found.ok()) return found.status();
-      if (*found) return {};
-    }
+    auto found = look_for_origin();
+    if (!found.ok()) return found.status();
+    if (*found) return {};
     warn("mass-not-definite",
          "M could not be certified positive definite, so the numbers are negative directions of K - s M, not "
          "counts of "
@@ -409,6 +407,10 @@ std::optional<std::pair<double, double>> PencilCounter::band(double shift,
   if (kind == CountKind::kDirections || !(pencil_->second_matrix_bound() > 0)) return std::nullopt;
   const double width = reach / pencil_->second_matrix_bound() * (1 + 0x1p-50);
   return std::pair{widened(shift - width, -1), widened(shift + width, 1)};
+}
+
+CountFact PencilCounter::fact_at_origin() const {
+  return {origin_, 0, 0, std::nullopt, base_.level, base_.failure_probability.value_or(0)};
 }
 
 std::optional<CountFact> PencilCounter::fact(const ShiftCount& count) const {

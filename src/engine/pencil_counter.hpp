@@ -28,10 +28,10 @@ class PencilCounter {
   /// Analyses the pencil and looks at M. Errors: those of reading, analysing and factoring.
   Status prepare(ModelInput model);
 
-  /// Settles what counts mean: K certified definite, or M semidefinite, or neither, with a warning. Call
-  /// after prepare(); the safety question calls it only when it has to. `any_origin`: where neither holds, an
-  /// origin below 0 is looked for (kAbove); below it a count is one of directions.
-  Status judge(bool any_origin = false);
+  /// Settles what counts mean: K certified definite, or M semidefinite, or neither, with a warning; where
+  /// neither holds an origin below 0 is looked for (kAbove), below which a count is one of directions. Call
+  /// after prepare(); the safety question calls it only when it has to.
+  Status judge();
 
   /// Taken as judged: K is definite by `why` (both ends of a line definite, say).
   void accept_definite(const Certificate& why);
@@ -65,6 +65,10 @@ class PencilCounter {
 
   /// The coefficient of the second matrix at a shift: f, -f or -s.
   double factor_of(double shift) const;
+  /// Where counting begins: 0, or with kAbove a shift below 0.
+  double origin() const { return origin_; }
+  /// No value lies between the origin and itself. Only with kFromZero and kAbove.
+  CountFact fact_at_origin() const;
   bool two_sided() const { return kind_ == CountKind::kFromZero; }
   /// Of K when judged definite, of M or of K on the massless dofs: what every count also rests on.
   const Certificate& base() const { return base_; }
@@ -81,7 +85,7 @@ class PencilCounter {
   Status judge_massless(const ModelInput& model, const std::vector<Index>& massless);
   Result<CertifiedInertia> certify_apart(ModelInput part);
   Status look_for_common_null_vectors();
-  Status judge_stiffness(bool any_origin);
+  Status judge_stiffness();
   Result<bool> look_for_origin();
   Status certify_mass();
   double data_error(const PreparedPencil& pencil, double factor) const;

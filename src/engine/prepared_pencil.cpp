@@ -343,6 +343,16 @@ Result<std::optional<DefiniteBase>> PreparedPencil::definite_base(double factor,
   return base;
 }
 
+Result<std::optional<ShiftedInverse>> PreparedPencil::shifted_inverse(double factor, ThreadPool& pool,
+                                                                      Outcome& outcome) {
+  if (analysis_.forecast.peak_bytes_solve > bytes_for_factor()) return std::optional<ShiftedInverse>{};
+  auto inverse = ShiftedInverse::make(analysis_, combination(factor), factor_options_, pool);
+  if (!inverse.ok()) return inverse.status();
+  ++outcome.work.factorizations;
+  if (*inverse) outcome.timings.factor += (*inverse)->factor_seconds();
+  return inverse;
+}
+
 Mode PreparedPencil::mode_of(const std::vector<double>& vector, double value, double residual) const {
   Mode mode{std::vector<double>(static_cast<std::size_t>(file_rows_), 0.0), value, residual};
   double largest = 0;

@@ -12,6 +12,7 @@
 #include "model/question.hpp"
 #include "sparse/matrix_family.hpp"
 #include "spectrum/definite_base.hpp"
+#include "spectrum/shifted_inverse.hpp"
 #include "symbolic/analysis.hpp"
 
 namespace stanchion {
@@ -63,6 +64,10 @@ class PreparedPencil {
   /// test is needed. The base refers to this pencil and to `pool`.
   Result<std::optional<DefiniteBase>> definite_base(double factor, double smallest_eigenvalue,
                                                     ThreadPool& pool, Outcome& outcome);
+
+  /// The inverse of K with what is added plus `factor` times the second matrix, for estimates; nothing when
+  /// it is singular to working precision, or the factor does not fit into the memory.
+  Result<std::optional<ShiftedInverse>> shifted_inverse(double factor, ThreadPool& pool, Outcome& outcome);
 
   /// `coefficient` times the second matrix, scaled, in elimination order.
   ShiftedMatrix second(double coefficient) const;

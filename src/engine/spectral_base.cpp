@@ -1,0 +1,142 @@
+#include "engine/spectral_base.hpp"
+
+#include <cmath>
+
+#include "engine/mode_search.hpp"
+
+namespace stanchion {
+namespace {
+
+/// Below this many operations one more factorization costs less than anyone notices, and a proof says more
+/// than a test.
+constexpr double kProofIsCheap = 2e9;
+
+class BaseSettler {
+ public:
+  BaseSettler(PencilCounter& counter, const Request& request, const RunContext& context,
+              const CountAt& count_at, ThreadPool& pool, Outcome& outcome)
+      : counter_(counter),
+        request_(request),
+        context_(context),
+        count_at_(count_at),
+        pool_(pool),
+        outcome_(outcome) {}
+
+  Result<std::optional<SpectralBase>> run() {
+    if (Status status = settle(); !status.ok()) return status;
+    return std::move(base_);
+  }
+
+ private:
+  bool small() const { return counter_.pencil().analysis().forecast.factor_flops < kProofIsCheap; }
+
+  Status settle() {
+    const bool factors = request_.pencil == Pencil::kGeometric;
+    if ((!factors || small()) && counter_.kind() == CountKind::kDirections) {
+      if (Status status = counter_.judge(); !status.ok()) return status;
+      if (counter_.kind() == CountKind::kDirections) return {};
+    }
+    if (counter_.kind() == CountKind::kBelow) return settle_below();
+    const double origin = counter_.origin();  // 0 unless K alone is not definite
+    auto base = counter_.pencil().definite_base(counter_.factor_of(origin), counter_.stiffness_bound(), pool_,
+                                                outcome_);
+    if (!base.ok()) return base.status();
+    if (*base) take(std::move(**base), -origin);
+    if (counter_.kind() == CountKind::kAbove) return base_ ? settle_elastic() : Status{};
+    if (counter_.kind() != CountKind::kDirections) return {};
+    if (base_) {
+      counter_.accept_definite(base_->base.certificate());
+      return {};
+    }
+    return counter_.judge();
+  }
+
+  void take(DefiniteBase base, double tau) {
+    base_.emplace(
+        SpectralBase{std::move(base), counter_.pencil().second(-counter_.factor_of(1)), tau, rigid_});
+  }
+
+  /// K + tau M: tau = 0 where K is definite, else large enough, and of the size of the lowest values that are
+  /// not zero.
+  Status settle_below() {
+    auto plain = try_tau(0);
+    if (!plain.ok()) return plain.status();
+    if (*plain) return {};
+    double tau = counter_.pencil().size_ratio() * 1e-7;
+    if (!(tau > 0) || !std::isfinite(tau)) return {};
+    for (int k = 0; k < 8 && !base_; ++k, tau *= 64) {
+      auto shifted = try_tau(tau);
+      if (!shifted.ok()) return shifted.status();
+    }
+    if (!base_) return {};
+    return settle_elastic();
+  }
+
+  /// The zeros of a free body are told apart, and tau becomes one of the size of what comes after them. With
+  /// kAbove any tau will do: K - s M is definite at -tau and at the origin, so between them (convexity), and
+  /// no value lies there.
+  Status settle_elastic() {
+    auto zero = count_at_(0);
+    if (!zero.ok()) return zero.status();
+    if (*zero) rigid_ = base_->rigid = static_cast<Index>((*zero)->most - (*zero)->least);
+    const Offset below = *zero ? (*zero)->least : 0;
+    return move_near_elastic(static_cast<std::size_t>(below + rigid_));
+  }
+
+  /// `before`: number of values below the first elastic one.
+  Status move_near_elastic(std::size_t before) {
+    double elastic = 0;
+    {
+      ModeSearch search(counter_, *base_, request_, context_, pool_, outcome_);
+      search.start(static_cast<Index>(before) + 4, {static_cast<Index>(before) + 8, 0});
+      int looks = 0;
+      auto done = search.iterate([&] { return ++looks == 2; });
+      if (!done.ok()) return done.status();
+      const Candidates found = search.candidates(Side::kPositive);
+      if (found.list.size() <= before) return {};
+      elastic = base_->shift_of(found.list[before].theta);
+    }
+    const double tau = base_->tau;
+    if (!(elastic > 0) || (tau < 30 * elastic && tau > elastic / 1000)) return {};
+    std::optional<SpectralBase> old = std::move(base_);
+    base_.reset();
+    auto moved = try_tau(elastic);
+    if (!moved.ok()) return moved.status();
+    if (!*moved) base_ = std::move(old);
+    return {};
+  }
+
+  Result<bool> try_tau(double tau) {
+    double bound = 0;
+    if (small()) {
+      auto found = counter_.inertia_at(-tau, true);
+      if (!found.ok()) return found.status();
+      bound = found->certificate.smallest_eigenvalue_above.value_or(0);
+      if (!(bound > 0)) return false;
+    }
+    auto base = counter_.pencil().definite_base(counter_.factor_of(-tau), bound, pool_, outcome_);
+    if (!base.ok()) return base.status();
+    if (!*base) return false;
+    take(std::move(**base), tau);
+    return true;
+  }
+
+  PencilCounter& counter_;
+  const Request& request_;
+  const RunContext& context_;
+  const CountAt& count_at_;
+  ThreadPool& pool_;
+  Outcome& outcome_;
+  std::optional<SpectralBase> base_;
+  Index rigid_ = 0;
+};
+
+}  // namespace
+
+Result<std::optional<SpectralBase>> settle_base(PencilCounter& counter, const Request& request,
+                                                const RunContext& context, const CountAt& count_at,
+                                                ThreadPool& pool, Outcome& outcome) {
+  return BaseSettler(counter, request, context, count_at, pool, outcome).run();
+}
+
+}  // namespace stanchion
