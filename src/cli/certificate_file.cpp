@@ -25,9 +25,11 @@ Result<std::string> digest_of_file(const std::string& path) {
   return sha256(file->bytes());
 }
 
-Result<std::vector<CertifiedFile>> certify_support_files(const InputRequest& input) {
+Result<std::vector<CertifiedFile>> certify_support_files(const Request& request) {
   std::vector<CertifiedFile> files;
-  for (const InputFile& file : input_files(input)) {
+  std::vector<InputFile> named = input_files(request.input);
+  if (!request.audit.values.empty()) named.push_back({"values", request.audit.values, false});
+  for (const InputFile& file : named) {
     if (file.matrix) continue;
     const auto digest = digest_of_file(file.path);
     if (!digest.ok()) return digest.status();

@@ -13,7 +13,7 @@ Result<std::string> digest_of_file(const std::string& path);
 
 /// The files of `input` that are no matrices (those are digested where they are read), with digests. Call
 /// before the work: what the certificate names must be readable. Errors: those of digest_of_file.
-Result<std::vector<CertifiedFile>> certify_support_files(const InputRequest& input);
+Result<std::vector<CertifiedFile>> certify_support_files(const Request& request);
 
 /// The document for `outcome`, the answer to `request`.
 CertificateDocument make_certificate(const Request& request, const Outcome& outcome,

@@ -52,6 +52,8 @@ Status find_inputs(CertificateDocument& document, const std::optional<std::strin
     if (!place.ok()) return place.status();
     if (file.role == "stiffness") {
       input.stiffness = std::move(*place);
+    } else if (file.role == "values") {
+      document.request.audit.values = std::move(*place);
     } else if (file.role == "added") {
       input.added[added++].path = std::move(*place);
     } else {

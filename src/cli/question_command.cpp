@@ -53,7 +53,7 @@ void declare_output_options(Arguments& arguments, OutputOptions& options, Questi
     arguments.text("--view", options.view, "FILE",
                    "the same thinned to what a screen shows, as JSON (needs --nodes)");
   }
-  if (question == Question::kCheck || question == Question::kCount) {
+  if (question != Question::kLocate && question != Question::kForecast) {
     arguments.text("--certificate", options.certificate, "FILE",
                    "what was claimed and how, for `stanchion recheck FILE`");
   }
@@ -147,7 +147,7 @@ Status open_targets(const OutputOptions& output, const Request& request, Targets
   if (Status status = open("--modes", output.modes, targets.modes); !status.ok()) return status;
   if (Status status = check_not_read("--results", output.results, read); !status.ok()) return status;
   if (!output.certificate) return {};
-  auto support = certify_support_files(input);
+  auto support = certify_support_files(request);
   if (support.ok()) targets.support_files = std::move(*support);
   return support.status();
 }

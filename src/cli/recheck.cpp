@@ -1,5 +1,8 @@
 #include <fmt/format.h>
 
+#include <algorithm>
+#include <cmath>
+
 #include "base/digest.hpp"
 #include "base/mapped_file.hpp"
 #include "cli/answer_file.hpp"
@@ -16,6 +19,7 @@
 #include "model/claims.hpp"
 #include "model/exit_code.hpp"
 #include "model/validate.hpp"
+#include "model/value_claims.hpp"
 #include "report/recheck_report.hpp"
 
 namespace stanchion::cli {
@@ -56,6 +60,9 @@ void RecheckCommand::declare(Arguments& arguments) {
       "  stanchion recheck K.cert.json");
 }
 
+/// The second path asks for narrower intervals, so that they lie inside of those claimed.
+constexpr double kSharper = 32;
+
 /// The question of the certificate, with what this call allows.
 Result<Request> second_request(const Request& claimed, const RequestOptions& resources, Question question) {
   RequestOptions options = resources;
@@ -63,6 +70,7 @@ Result<Request> second_request(const Request& claimed, const RequestOptions& res
   const auto allowed = build_request(options, Question::kForecast);
   if (!allowed.ok()) return allowed.status();
   Request request = by_second_path(claimed);
+  request.bracket.width /= kSharper;
   request.threads = allowed->threads;
   request.memory_cap_bytes = allowed->memory_cap_bytes;
   if (Status status = validate(request, question); !status.ok()) return status;
@@ -139,6 +147,71 @@ Status same_inputs(const Outcome& claimed_files, const std::vector<CertifiedFile
                            files.front().path, "recheck with the program version that made the certificate");
 }
 
+Question question_of(const Outcome& claimed) {
+  if (claimed.check) return Question::kCheck;
+  if (claimed.bracket) return Question::kBracket;
+  return claimed.audit ? Question::kAudit : Question::kCount;
+}
+
+Result<Outcome> ask_again(Question question, const Request& request, const RunContext& context) {
+  switch (question) {
+    case Question::kCheck:
+      return run_check(request, context);
+    case Question::kBracket:
+      return run_bracket(request, context);
+    case Question::kAudit:
+      return run_audit(request, context);
+    default:
+      return run_count(request, context);
+  }
+}
+
+/// A range that spans what the bracket says, in the pencil's own unit.
+void ask_for_range(const BracketOutcome& claimed, Request& request) {
+  BracketRequest& bracket = request.bracket;
+  bracket.unit = request.pencil == Pencil::kMass ? ValueUnit::kOmega2 : ValueUnit::kFactor;
+  if (claimed.complete) {
+    if (std::isfinite(claimed.complete->from)) bracket.from = claimed.complete->from;
+    bracket.to = claimed.complete->to;
+    bracket.below = !bracket.from.has_value();
+  } else if (!claimed.critical.empty()) {
+    const CriticalValue &first = claimed.critical.front(), &last = claimed.critical.back();
+    const double beyond = 1e-3 * std::max(std::fabs(first.low), std::fabs(last.high));
+    bracket.from = first.low - beyond;
+    bracket.to = last.high + beyond;
+  } else {
+    bracket.first = 1;
+  }
+}
+
+/// Intervals that the second path did not settle are counted at their ends.
+Result<std::vector<ClaimComparison>> compare_values(const Outcome& claimed, const Outcome& found,
+                                                    Request request, const RunContext& context) {
+  std::vector<ClaimComparison> comparisons = compare_claims(claimed, found);  // its risk
+  if (claimed.audit && found.audit) {
+    for (ClaimComparison& one : compare_audits(*claimed.audit, *found.audit))
+      comparisons.push_back(std::move(one));
+    return comparisons;
+  }
+  request.shifts = value_ends(*claimed.bracket, *found.bracket);
+  std::vector<ShiftCount> counts;
+  if (!request.shifts.empty()) {
+    auto ends = run_count(request, context);
+    if (!ends.ok()) return ends.status();
+    counts = std::move(ends->count->counts);
+  }
+  for (ClaimComparison& one : compare_brackets(*claimed.bracket, *found.bracket, counts))
+    comparisons.push_back(std::move(one));
+  return comparisons;
+}
+
+Result<std::vector<ClaimComparison>> compare(Question question, const Outcome& claimed, const Outcome& found,
+                                             const Request& request, const RunContext& context) {
+  if (question == Question::kCheck) return compare_with_second_look(claimed, found, request, context);
+  if (question == Question::kCount) return compare_counts(claimed, found, request, context);
+  return compare_values(claimed, found, request, context);
+}
+
 Status RecheckCommand::deliver(const RecheckReport& report, std::optional<AnswerFile>& file) const {
   if (file) {
     if (Status status = file->commit(recheck_to_json(report)); !status.ok()) return status;
@@ -168,10 +241,18 @@ Result<int> RecheckCommand::run(const Call& call) {
   if (!json_file.ok()) return json_file.status();
   if (Status status = find_inputs(*document, root_); !status.ok()) return status;
 
-  const Question question = document->outcome.check ? Question::kCheck : Question::kCount;
+  const Question question = question_of(document->outcome);
+  if (document->outcome.bracket) ask_for_range(*document->outcome.bracket, document->request);
+  const bool values = question == Question::kBracket || question == Question::kAudit;
+  if (values && with_ == "mumps") {
+    return Status::bad_usage("no-such-library", "a library counts at shifts, not values in intervals",
+                             "--with",
+                             "leave it out, or make a certificate of count at the ends that matter");
+  }
   const auto request = second_request(document->request, resources_, question);
   if (!request.ok()) return request.status();
-  const auto library = library_to_ask(with_, request->memory_cap_bytes);
+  const auto library =
+      library_to_ask(values ? std::optional<std::string>("own") : with_, request->memory_cap_bytes);
   if (!library.ok()) return library.status();
   use_plain_kernels();
   CancellationToken token;
@@ -180,12 +261,10 @@ Result<int> RecheckCommand::run(const Call& call) {
   RunContext context;
   context.cancel = &token;
   context.progress = [&line](const char* stage, double fraction) { line.update(stage, fraction); };
-  auto found = question == Question::kCheck ? run_check(*request, context) : run_count(*request, context);
+  auto found = ask_again(question, *request, context);
   if (!found.ok()) return found.status();
   if (Status status = same_inputs(document->outcome, document->files, *found); !status.ok()) return status;
-  auto claims = question == Question::kCheck
-                    ? compare_with_second_look(document->outcome, *found, *request, context)
-                    : compare_counts(document->outcome, *found, *request, context);
+  auto claims = compare(question, document->outcome, *found, *request, context);
   if (!claims.ok()) return claims.status();
   std::optional<LibraryComparison> compared;
   if (*library) {

@@ -145,6 +145,20 @@ std::optional<std::string> contradiction_within_risk(const Outcome& outcome) {
             fits(count.certificate.level, count.certificate.failure_probability);
     }
   }
+  const auto values_fit = [&](const std::vector<CriticalValue>& values) {
+    return std::all_of(values.begin(), values.end(), [&](const CriticalValue& value) {
+      return fits(value.level, value.failure_probability);
+    });
+  };
+  if (outcome.bracket) {
+    all = all && values_fit(outcome.bracket->critical);
+    for (const auto* range : {&outcome.bracket->complete, &outcome.bracket->other_side})
+      all = all && (!*range || fits((*range)->level, (*range)->failure_probability));
+  }
+  if (outcome.audit) {
+    all = all && values_fit(outcome.audit->missing) &&
+          fits(outcome.audit->range.level, outcome.audit->range.failure_probability);
+  }
   if (all) return std::nullopt;
   return wrong("a failure probability is not that of its attempts");
 }

@@ -15,10 +15,35 @@ constexpr const char* kScaling =
     "powers of two on both sides of the matrix, from its diagonal where that is positive and dominates, "
     "otherwise equilibrated in the maximum norm; exact, and the inertia stays";
 
-Json question_of(const Request& request) {
+const char* name_of(ValueUnit unit) {
+  return unit == ValueUnit::kHertz ? "hertz" : unit == ValueUnit::kOmega2 ? "omega2" : "factor";
+}
+
+/// Of an audit; the list itself is among the files.
+Json list_of(const Outcome& outcome, const AuditRequest& audit) {
+  if (!outcome.audit) return nullptr;
+  return {{"unit", name_of(audit.unit)},
+          {"tolerance", json_of(audit.tolerance)},
+          {"from", json_of(audit.from)},
+          {"to", json_of(audit.to)},
+          {"find_missing", audit.find_missing}};
+}
+
+/// Of a sweep every shift that was counted at is a question of its own.
+std::vector<double> shifts_of(const Request& request, const Outcome& outcome) {
+  if (!outcome.sweep) return request.shifts;
+  std::vector<double> shifts;
+  for (const ShiftCount& count : outcome.count->counts) shifts.push_back(count.shift);
+  return shifts;
+}
+
+Json question_of(const Request& request, const Outcome& outcome) {
   const InputRequest& input = request.input;
   return {{"pencil", name_of(request.pencil)},
-          {"shifts", json_of(request.shifts)},
+          {"shifts", json_of(shifts_of(request, outcome))},
+          {"width", outcome.bracket ? json_of(request.bracket.width) : Json(nullptr)},
+          {"safety", outcome.bracket ? Json(request.bracket.safety) : Json(nullptr)},
+          {"list", list_of(outcome, request.audit)},
           {"load_sign", input.load_sign_minus ? "minus" : "plus"},
           {"symmetric_part", input.symmetric_part},
           {"strike_held", input.strike_held},
@@ -53,6 +78,58 @@ Json events_of(const std::vector<RiskEvent>& events) {
   return list;
 }
 
+Json range_of(const char* which, const CountedRange& range) {
+  return {{"statement", "range"},
+          {"which", which},
+          {"from", json_of(range.from)},
+          {"to", json_of(range.to)},
+          {"count", json_of(range.count)},
+          {"level", name_of(range.level)},
+          {"failure_probability", json_of(range.failure_probability)}};
+}
+
+void add_range(const char* which, const std::optional<CountedRange>& range, Json& claims) {
+  if (range) claims.push_back(range_of(which, *range));
+}
+
+void add_values(const std::vector<CriticalValue>& values, Json& claims) {
+  for (const CriticalValue& value : values) {
+    claims.push_back({{"statement", "values"},
+                      {"value", json_of(value.value)},
+                      {"low", json_of(value.low)},
+                      {"high", json_of(value.high)},
+                      {"multiplicity", value.multiplicity},
+                      {"level", name_of(value.level)},
+                      {"proof", value.proof},
+                      {"failure_probability", json_of(value.failure_probability)}});
+  }
+}
+
+Json audit_of(const AuditOutcome& audit) {
+  Json gaps = Json::array();
+  for (const AuditGap& gap : audit.gaps) {
+    gaps.push_back({{"low", json_of(gap.low)},
+                    {"high", json_of(gap.high)},
+                    {"listed", gap.listed},
+                    {"counted", gap.counted}});
+  }
+  Json claim = range_of("audited", audit.range);
+  claim["statement"] = "audit";
+  claim.erase("which");
+  claim["verdict"] = name_of(audit.verdict);
+  claim["listed"] = audit.listed;
+  claim["outside"] = audit.outside;
+  claim["proof"] = audit.proof;
+  claim["gaps"] = std::move(gaps);
+  return claim;
+}
+
+const std::vector<std::string>* sentences_of(const Outcome& outcome) {
+  if (outcome.count) return &outcome.count->sentences;
+  if (outcome.bracket) return &outcome.bracket->sentences;
+  return outcome.audit ? &outcome.audit->sentences : nullptr;
+}
+
 /// One claim an answer.
 Json claims_of(const Outcome& outcome) {
   Json claims = Json::array();
@@ -71,6 +148,15 @@ Json claims_of(const Outcome& outcome) {
       claim.update(json_of(count));
       claims.push_back(std::move(claim));
     }
+  }
+  if (outcome.bracket) {
+    add_values(outcome.bracket->critical, claims);
+    add_range("complete", outcome.bracket->complete, claims);
+    add_range("other_side", outcome.bracket->other_side, claims);
+  }
+  if (outcome.audit) {
+    claims.push_back(audit_of(*outcome.audit));
+    add_values(outcome.audit->missing, claims);
   }
   return claims;
 }
@@ -91,13 +177,13 @@ std::string certificate_to_json(const CertificateDocument& document) {
   json["arguments"] = json_of(outcome.arguments);
   json["title"] = json_of(outcome.title);
   json["reference"] = json_of(outcome.reference);
-  json["question"] = question_of(document.request);
+  json["question"] = question_of(document.request, outcome);
   json["files"] = files_of(document.files);
   json["rows_analysed"] = outcome.rows_analysed;
   json["struck"] = {{"equations", outcome.rows_struck}, {"sha256", digest_or_null(outcome.struck_sha256)}};
   json["scaling"] = {{"method", kScaling}, {"sha256", digest_or_null(outcome.scaling_sha256)}};
   json["claims"] = claims_of(outcome);
-  json["sentences"] = outcome.count ? json_of(outcome.count->sentences) : Json::array();
+  json["sentences"] = sentences_of(outcome) != nullptr ? json_of(*sentences_of(outcome)) : Json::array();
   json["risk"] = {{"allowed", json_of(outcome.risk_allowed)}, {"spent", json_of(outcome.risk)}};
   json["seed"] = outcome.seed;
   json["events"] = events_of(outcome.events);

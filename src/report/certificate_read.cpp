@@ -143,6 +143,58 @@ ShiftCount count_of(const Member& claim) {
   return count;
 }
 
+CriticalValue value_of(const Member& claim) {
+  CriticalValue value;
+  value.value = claim.at("value").real();
+  value.low = claim.at("low").real();
+  value.high = claim.at("high").real();
+  value.multiplicity = claim.at("multiplicity").index();
+  value.level = level_of(claim.at("level"));
+  value.proof = word_of(claim.at("proof"), {"counts", "residual"});
+  value.failure_probability = unless_null(claim.at("failure_probability"), probability_of);
+  return value;
+}
+
+/// A range that is open below has no `from`.
+CountedRange range_of(const Member& claim) {
+  return {optional_real(claim.at("from")).value_or(-INFINITY), claim.at("to").real(),
+          unless_null(claim.at("count"), index_of), level_of(claim.at("level")),
+          unless_null(claim.at("failure_probability"), probability_of)};
+}
+
+AuditOutcome audit_of(const Member& claim) {
+  AuditOutcome audit;
+  audit.verdict =
+      claim.at("verdict").named({AuditVerdict::kComplete, AuditVerdict::kMissing, AuditVerdict::kSurplus,
+                                 AuditVerdict::kMissingAndSurplus, AuditVerdict::kUnresolved});
+  audit.range = range_of(claim);
+  audit.listed = claim.at("listed").index();
+  audit.outside = claim.at("outside").index();
+  audit.proof = claim.at("proof").text();
+  for (const Member& gap : claim.at("gaps").items()) {
+    audit.gaps.push_back({optional_real(gap.at("low")).value_or(-INFINITY),
+                          gap.at("high").real(),
+                          gap.at("listed").index(),
+                          gap.at("counted").index(),
+                          {}});
+  }
+  return audit;
+}
+
+void read_value_claim(const Member& claim, Outcome& outcome) {
+  const std::string statement = word_of(claim.at("statement"), {"values", "range", "audit"});
+  if (statement == "audit" && outcome.command == "audit" && !outcome.audit) {
+    outcome.audit = audit_of(claim);
+  } else if (statement == "values" && (outcome.bracket || outcome.audit)) {
+    (outcome.bracket ? outcome.bracket->critical : outcome.audit->missing).push_back(value_of(claim));
+  } else if (statement == "range" && outcome.bracket) {
+    const bool complete = word_of(claim.at("which"), {"complete", "other_side"}) == "complete";
+    (complete ? outcome.bracket->complete : outcome.bracket->other_side) = range_of(claim);
+  } else {
+    claim.at("statement").wrong("no statement of this command");
+  }
+}
+
 void read_claims(const Member& claims, Outcome& outcome) {
   const auto list = claims.items();
   if (outcome.command == "check") {
@@ -150,7 +202,13 @@ void read_claims(const Member& claims, Outcome& outcome) {
     outcome.check = check_of(list.front());
     return;
   }
-  if (list.empty()) claims.wrong("empty");
+  if (list.empty() && outcome.command != "bracket") claims.wrong("empty");
+  if (outcome.command == "bracket" || outcome.command == "audit") {
+    if (outcome.command == "bracket") outcome.bracket.emplace();
+    for (const Member& claim : list) read_value_claim(claim, outcome);
+    if (outcome.command == "audit" && !outcome.audit) claims.wrong("without a verdict");
+    return;
+  }
   outcome.count.emplace();
   for (const Member& claim : list) outcome.count->counts.push_back(count_of(claim));
 }
@@ -166,9 +224,12 @@ CertifiedFile file_of(const Member& member) {
 }
 
 /// The role of a file in the request; false for a role nobody knows.
-bool place_file(const CertifiedFile& file, InputRequest& input) {
+bool place_file(const CertifiedFile& file, Request& request) {
+  InputRequest& input = request.input;
   if (file.role == "stiffness") {
     input.stiffness = file.path;
+  } else if (file.role == "values") {
+    request.audit.values = file.path;
   } else if (file.role == "added") {
     input.added.push_back({file.path, file.factor.value_or(1)});
   } else if (std::optional<std::string>* place = file_of_role(input, file.role)) {
@@ -177,6 +238,17 @@ bool place_file(const CertifiedFile& file, InputRequest& input) {
     return false;
   }
   return true;
+}
+
+void read_list(const Member& list, AuditRequest& audit) {
+  const std::string unit = word_of(list.at("unit"), {"factor", "omega2", "hertz"});
+  audit.unit = unit == "hertz"    ? ValueUnit::kHertz
+               : unit == "omega2" ? ValueUnit::kOmega2
+                                  : ValueUnit::kFactor;
+  audit.tolerance = optional_real(list.at("tolerance"));
+  audit.from = optional_real(list.at("from"));
+  audit.to = optional_real(list.at("to"));
+  audit.find_missing = list.at("find_missing").truth();
 }
 
 void read_question(const Member& question, Request& request) {
@@ -190,6 +262,12 @@ void read_question(const Member& question, Request& request) {
   input.rows = unless_null(question.at("rows"), index_of);
   request.resolution = optional_real(question.at("resolution"));
   request.digits = unless_null(question.at("digits"), index_of);
+  if (question.has("width")) request.bracket.width = optional_real(question.at("width")).value_or(1e-8);
+  if (question.has("safety")) {
+    request.bracket.safety =
+        unless_null(question.at("safety"), [](const Member& m) { return m.truth(); }).value_or(false);
+  }
+  if (question.has("list") && !question.at("list").is_null()) read_list(question.at("list"), request.audit);
   request.precision = question.at("precision").named({Precision::kDouble, Precision::kExtended});
 }
 
@@ -200,12 +278,11 @@ CertificateDocument document_of(const Member& root) {
   Outcome& outcome = document.outcome;
   document.program_version = root.at("program").at("version").text();
   outcome.command = root.at("command").text();
-  if (outcome.command != "check" && outcome.command != "count")
-    root.at("command").wrong("neither check nor count");
+  word_of(root.at("command"), {"check", "count", "sweep", "bracket", "audit"});
   read_question(root.at("question"), document.request);
   for (const Member& file : root.at("files").items()) {
     document.files.push_back(file_of(file));
-    if (!place_file(document.files.back(), document.request.input)) file.at("role").wrong("no known role");
+    if (!place_file(document.files.back(), document.request)) file.at("role").wrong("no known role");
   }
   if (document.request.input.stiffness.empty()) root.at("files").wrong("without a stiffness matrix");
   outcome.rows_analysed = root.at("rows_analysed").index();
@@ -213,9 +290,8 @@ CertificateDocument document_of(const Member& root) {
   outcome.struck_sha256 = unless_null(root.at("struck").at("sha256"), text_of).value_or("");
   outcome.scaling_sha256 = unless_null(root.at("scaling").at("sha256"), text_of).value_or("");
   read_claims(root.at("claims"), outcome);
-  if (outcome.count) {
-    for (const Member& sentence : root.at("sentences").items())
-      outcome.count->sentences.push_back(sentence.text());
+  for (const Member& sentence : root.at("sentences").items()) {
+    if (outcome.count) outcome.count->sentences.push_back(sentence.text());
   }
   document.request.risk = outcome.risk_allowed = root.at("risk").at("allowed").real();
   outcome.risk = root.at("risk").at("spent").real();

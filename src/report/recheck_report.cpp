@@ -58,6 +58,7 @@ std::string headline(const RecheckReport& report) {
 /// Whether any statement rests on random vectors: only then can chance have a part in a contradiction.
 bool is_statistical(const Outcome& outcome) {
   if (outcome.check) return outcome.check->certificate.level == Level::kStatistical;
+  if (outcome.bracket || outcome.audit) return outcome.risk > 0;
   return outcome.count &&
          std::any_of(outcome.count->counts.begin(), outcome.count->counts.end(),
                      [](const ShiftCount& count) { return count.level == Level::kStatistical; });

@@ -355,10 +355,10 @@ void BlockLanczos::restart(const KeptValues& kept) {
     std::copy(from, from + m, chosen.begin() + Offset{c} * m);
   }
   for_pieces([&](Offset begin, Offset end, Offset) {
-    constexpr Offset kRows = 256;
-    std::vector<double> part(at(kRows * keep));
-    for (Offset first = begin; first < end; first += kRows) {
-      const Offset last = std::min(first + kRows, end);
+    constexpr Offset kTogether = 256;
+    std::vector<double> part(at(kTogether * keep));
+    for (Offset first = begin; first < end; first += kTogether) {
+      const Offset last = std::min(first + kTogether, end);
       gemm_tn(keep, static_cast<Index>(last - first), m, 1, chosen.data(), m,
               basis_.data() + first * most_columns_, most_columns_, 0, part.data(), keep);
       for (Offset i = first; i < last; ++i) {

@@ -45,8 +45,7 @@ void bracket_inside(const Interior& asked) {
   request.input.stiffness = files.matrix("K.mtx", chains(n, asked.copies));
   const bool factors = asked.pencil == Pencil::kGeometric;
   const std::string second = files.matrix(
-      "B.mtx",
-      diagonal(std::vector<double>(static_cast<std::size_t>(all), factors ? -asked.sign : 1.0)));
+      "B.mtx", diagonal(std::vector<double>(static_cast<std::size_t>(all), factors ? -asked.sign : 1.0)));
   (factors ? request.input.geometric : request.input.mass) = second;
   request.bracket.unit = factors ? ValueUnit::kFactor : ValueUnit::kOmega2;
   const double near = asked.sign * between(asked.first - 1, n), far = asked.sign * between(asked.last, n);

@@ -10,9 +10,9 @@
 namespace stanchion::test {
 namespace {
 
-/// A free chain of 2 m dofs, unit springs; mass j moves with u_2j + u_(2j+1), so that M has m null vectors and no
-/// empty row. With w = u_2j + u_(2j+1) and the differences d_j = u_(2j+1) - u_2j without mass (condensed by
-/// hand; for m = 2 on the pairs (0, 1) and (2, 3)): see each test.
+/// A free chain of 2 m dofs, unit springs; mass j moves with u_2j + u_(2j+1), so that M has m null vectors
+/// and no empty row. With w = u_2j + u_(2j+1) and the differences d_j = u_(2j+1) - u_2j without mass
+/// (condensed by hand; for m = 2 on the pairs (0, 1) and (2, 3)): see each test.
 SymmetricMatrix pair_masses(Index pairs) {
   std::vector<Triplet> entries;
   for (Index j = 0; j < pairs; ++j)
