@@ -50,7 +50,8 @@ class Audit {
 
  private:
   bool fast() const {
-    return !request_.digits && !request_.resolution && request_.precision == Precision::kDouble;
+    return !request_.digits && !request_.resolution && request_.precision == Precision::kDouble &&
+           !counter_.constrained();
   }
 
   // ---- the list

@@ -67,10 +67,10 @@ class Bracketer {
     return range;
   }
 
-  /// The residual intervals hold for the numbers as written, in double precision.
+  /// The residual intervals hold for the numbers as written, in double precision, from a definite matrix.
   bool uses_residuals() const {
     return asked_.method == BracketMethod::kResidual && !request_.digits && !request_.resolution &&
-           request_.precision == Precision::kDouble;
+           request_.precision == Precision::kDouble && !counter_.constrained();
   }
 
   // ---- is there none
@@ -117,6 +117,7 @@ class Bracketer {
   }
 
   void say_safety(const ValueRange& range) {
+    if (counter_.constrained()) return;
     if (answer_.none_below == true && counter_.two_sided() && *range.low <= 0 && *range.high >= 0) {
       answer_.sentences.push_back("K + f G is positive definite at every f in [" + number(*range.low) + ", " +
                                   number(*range.high) + "], because it is at the ends (convexity).");

@@ -36,7 +36,8 @@ Result<Outcome> count_model(ModelInput model, const Request& request, const RunC
     const auto [low, high] = std::minmax_element(request.shifts.begin(), request.shifts.end());
     auto other = look_at_the_other_side(counter, *low, *high, outcome, sentences);
     if (!other.ok()) return other.status();
-    if (auto convex = convexity_sentence(outcome.count->counts)) sentences.push_back(std::move(*convex));
+    if (auto convex = convexity_sentence(outcome.count->counts, counter.constrained()))
+      sentences.push_back(std::move(*convex));
   }
   return outcome;
 }

@@ -73,7 +73,8 @@ Result<std::vector<LibraryCount>> count_by_library(const Request& request, const
   Outcome scratch = begin_outcome("recheck", request, claimed.check ? Question::kCheck : Question::kCount);
   auto model = read_model(request, context, pool, scratch);
   if (!model.ok()) return model.status();
-  const bool relative_counts = request.pencil != Pencil::kMass || !some_massless(*model);
+  const bool relative_counts =
+      model->multipliers.empty() && (request.pencil != Pencil::kMass || !some_massless(*model));
   const bool alone = claimed.count && request.pencil == Pencil::kStiffness;
   const auto pencil = PreparedPencil::make(*model, alone, request, context, pool, scratch);
   if (!pencil.ok()) return pencil.status();

@@ -46,7 +46,7 @@ void say_other_side(const ShiftCount& other, Outcome& outcome, std::vector<std::
        outcome.inputs.front().path});
 }
 
-std::optional<std::string> convexity_sentence(const std::vector<ShiftCount>& counts) {
+std::optional<std::string> convexity_sentence(const std::vector<ShiftCount>& counts, bool constrained) {
   double low = 0, high = 0;
   for (const ShiftCount& count : counts) {
     if (count.level == Level::kNone || count.below != 0) continue;
@@ -54,7 +54,8 @@ std::optional<std::string> convexity_sentence(const std::vector<ShiftCount>& cou
     high = std::max(high, count.shift);
   }
   if (low == high) return std::nullopt;
-  return "K + f G is positive definite at every f in [" + number(low) + ", " + number(high) +
+  return std::string(constrained ? "On its constraints " : "") +
+         "K + f G is positive definite at every f in [" + number(low) + ", " + number(high) +
          "], because it is at the ends (convexity).";
 }
 

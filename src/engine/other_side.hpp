@@ -21,6 +21,6 @@ void say_other_side(const ShiftCount& other, Outcome& outcome, std::vector<std::
 
 /// K and K + f G both definite: definite at every factor between (a convex combination). Nothing when no
 /// certified count is 0.
-std::optional<std::string> convexity_sentence(const std::vector<ShiftCount>& counts);
+std::optional<std::string> convexity_sentence(const std::vector<ShiftCount>& counts, bool constrained);
 
 }  // namespace stanchion

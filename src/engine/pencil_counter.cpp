@@ -103,7 +103,37 @@ void PencilCounter::warn(const char* code, std::string message) {
   outcome_.warnings.push_back({code, std::move(message), outcome_.inputs.front().path});
 }
 
+/// A = [K B^T; B 0]: with q multipliers n-(A) - q is the number of negative directions on the constraints
+/// when A is not singular, for B has full rank then, and lies in the same place of the range when it is
+/// (Gould 1985; spectrum/residual_bound.md, 5). The second matrix must not touch the multipliers.
+void PencilCounter::look_at_multipliers(const ModelInput& model) {
+  if (model.multipliers.empty() || request_.pencil == Pencil::kStiffness) return;
+  std::vector<char> is_multiplier(static_cast<std::size_t>(model.stiffness.rows), 0);
+  for (const Index i : model.multipliers) is_multiplier[static_cast<std::size_t>(i)] = 1;
+  const auto touches = [&](const SymmetricMatrix& matrix, int most) {
+    for (Index j = 0; j < matrix.rows; ++j) {
+      for (Offset k = matrix.column_start[j]; k < matrix.column_start[Offset{j} + 1]; ++k) {
+        const auto i = static_cast<std::size_t>(matrix.row[k]);
+        if (matrix.value[k] != 0 && is_multiplier[i] + is_multiplier[static_cast<std::size_t>(j)] > most)
+          return true;
+      }
+    }
+    return false;
+  };
+  bool apart = !touches(model.stiffness, 1) && !touches(*model.second, 0);
+  for (const SymmetricMatrix& added : model.added) apart = apart && !touches(added, 1);
+  if (apart) {
+    multipliers_ = static_cast<Index>(model.multipliers.size());
+    return;
+  }
+  warn(
+      "multipliers-coupled",
+      "multipliers act on each other, or the second matrix acts on them, so the structure on its constraints "
+      "is not counted. Remedy: check the list given to --multipliers, or the dof map");
+}
+
 Status PencilCounter::prepare(ModelInput model) {
+  look_at_multipliers(model);
   if (request_.pencil == Pencil::kMass) {
     if (Status status = judge_mass(model); !status.ok()) return status;
   }
@@ -155,7 +185,12 @@ Status PencilCounter::judge_mass(const ModelInput& model) {
     mass_semidefinite_ = verdict_of(found->inertia, found->certificate.level) == Verdict::kPositiveDefinite;
   }
   mass_judged_ = true;
-  return mass_semidefinite_ ? judge_massless(model, facts.massless) : Status{};
+  if (!mass_semidefinite_) return {};
+  if (!constrained() || static_cast<std::size_t>(multipliers_) != facts.massless.size())
+    return judge_massless(model, facts.massless);
+  // Exactly the multipliers have no mass: what they add is known for every shift.
+  negative_on_massless_ = multipliers_;
+  return {};
 }
 
 Status PencilCounter::judge_massless(const ModelInput& model, const std::vector<Index>& massless) {
@@ -200,7 +235,17 @@ Status PencilCounter::judge_stiffness() {
   stiffness_ = *definite;
   base_ = definite->certificate;
   stiffness_bound_ = definite->certificate.smallest_eigenvalue_above.value_or(0);
-  if (verdict_of(definite->inertia, definite->certificate.level) == Verdict::kPositiveDefinite) {
+  const Inertia& inertia = definite->inertia;
+  const bool definite_on_constraints = constrained() && request_.pencil == Pencil::kGeometric &&
+                                       definite->certificate.level != Level::kNone && inertia.zero == 0 &&
+                                       inertia.undecided == 0 && inertia.negative == multipliers_;
+  if (definite_on_constraints) {
+    kind_ = CountKind::kFromZero;
+    negative_on_massless_ = multipliers_;
+    return {};
+  }
+  multipliers_ = 0;  // nothing is taken off: the numbers are those of the whole matrix
+  if (verdict_of(inertia, definite->certificate.level) == Verdict::kPositiveDefinite) {
     kind_ = CountKind::kFromZero;
     if (request_.pencil == Pencil::kMass) {
       warn("mass-not-definite",
@@ -297,6 +342,11 @@ CountKind PencilCounter::kind_at(double shift) const {
 }
 
 std::string PencilCounter::meaning(double shift) const {
+  const bool values = kind_at(shift) != CountKind::kDirections;
+  return meaning_on_all(shift) + (values && constrained() ? ", of the structure on its constraints" : "");
+}
+
+std::string PencilCounter::meaning_on_all(double shift) const {
   const bool factors = request_.pencil == Pencil::kGeometric;
   switch (kind_at(shift)) {
     case CountKind::kFromZero:
@@ -397,6 +447,7 @@ std::optional<std::pair<double, double>> PencilCounter::band(double shift,
   if (!certificate.resolution || !certificate.error_bound) return std::nullopt;
   const double reach = (*certificate.resolution + *certificate.error_bound) * (1 + 0x1p-50);
   const CountKind kind = kind_at(shift);
+  if (constrained()) return std::nullopt;  // no bound on K on the constraints
   if (kind == CountKind::kFromZero || kind == CountKind::kAbove) {
     const double relative = reach / stiffness_bound_ * (1 + 0x1p-50), far = shift - origin_;
     if (!(relative < 1)) return std::nullopt;

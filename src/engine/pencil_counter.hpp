@@ -65,6 +65,8 @@ class PencilCounter {
 
   /// The coefficient of the second matrix at a shift: f, -f or -s.
   double factor_of(double shift) const;
+  /// Counts are of the structure on its constraints: the multipliers were taken off.
+  bool constrained() const { return multipliers_ > 0; }
   /// Where counting begins: 0, or with kAbove a shift below 0.
   double origin() const { return origin_; }
   /// No value lies between the origin and itself. Only with kFromZero and kAbove.
@@ -81,6 +83,7 @@ class PencilCounter {
   void warn(const char* code, std::string message);
 
  private:
+  void look_at_multipliers(const ModelInput& model);
   Status judge_mass(const ModelInput& model);
   Status judge_massless(const ModelInput& model, const std::vector<Index>& massless);
   Result<CertifiedInertia> certify_apart(ModelInput part);
@@ -91,6 +94,7 @@ class PencilCounter {
   double data_error(const PreparedPencil& pencil, double factor) const;
   CountKind kind_at(double shift) const;
   std::string meaning(double shift) const;
+  std::string meaning_on_all(double shift) const;
   ShiftCount count_from(double shift, const CertifiedInertia& found, Warnings& warnings) const;
   void rest_on(ShiftCount& count, const Certificate& own) const;
   std::optional<std::pair<double, double>> band(double shift, const Certificate& certificate) const;
@@ -105,7 +109,8 @@ class PencilCounter {
   double stiffness_bound_ =
       0;               ///< S K S is at least this, when certified definite; kAbove: S (K - origin M) S
   double origin_ = 0;  ///< kAbove: values below it are not counted
-  Index negative_on_massless_ = 0;
+  Index negative_on_massless_ = 0;  ///< or taken off for the multipliers
+  Index multipliers_ = 0;           ///< 0: none, or they do not border K alone
   Certificate base_;
   std::optional<CertifiedInertia> stiffness_;
 };

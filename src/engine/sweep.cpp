@@ -119,7 +119,8 @@ Result<Outcome> sweep_model(ModelInput model, const Request& request, const RunC
     std::vector<std::string>& sentences = outcome.count->sentences;
     auto other = look_at_the_other_side(counter, request.sweep.from, request.sweep.to, outcome, sentences);
     if (!other.ok()) return other.status();
-    if (auto convex = convexity_sentence(outcome.count->counts)) sentences.push_back(std::move(*convex));
+    if (auto convex = convexity_sentence(outcome.count->counts, counter.constrained()))
+      sentences.push_back(std::move(*convex));
   }
   return outcome;
 }

@@ -45,7 +45,8 @@ Number number_in(double low, double high, const BracketOutcome& found) {
   return number;
 }
 
-/// The number of values below a shift, as residual_bound.md has it; nothing when the count is not one of values.
+/// The number of values below a shift, as residual_bound.md has it; nothing when the count is not one of
+/// values.
 std::optional<Number> below(const ShiftCount& count) {
   if (count.certificate.level == Level::kNone || count.meaning.find("directions") != std::string::npos)
     return std::nullopt;
@@ -72,7 +73,8 @@ ClaimComparison compared(std::optional<double> shift, std::string claimed, Offse
   comparison.claimed = std::move(claimed);
   comparison.found = in_words(found);
   if (comparison.agreement == Agreement::kContradicted) comparison.why = "the two numbers exclude each other";
-  if (comparison.agreement == Agreement::kNotRepeated) comparison.why = "the second path does not say as much";
+  if (comparison.agreement == Agreement::kNotRepeated)
+    comparison.why = "the second path does not say as much";
   return comparison;
 }
 
@@ -221,8 +223,7 @@ std::vector<ClaimComparison> compare_brackets(const BracketOutcome& claimed, con
     return number;
   };
   for (const CriticalValue& value : claimed.critical) {
-    const Number number =
-        settled(value, found) ? number_in(value.low, value.high, found) : from_counts();
+    const Number number = settled(value, found) ? number_in(value.low, value.high, found) : from_counts();
     comparisons.push_back(compared(
         value.value, fmt::format("{} in {}", value.multiplicity, interval_in_words(value.low, value.high)),
         value.multiplicity, number));
@@ -235,9 +236,9 @@ std::vector<ClaimComparison> compare_brackets(const BracketOutcome& claimed, con
     } else if (std::isfinite(range.from)) {
       number = from_counts();
     }
-    comparisons.push_back(compared(
-        {}, fmt::format("{} between {:.10g} and {:.10g}", *range.count, range.from, range.to), *range.count,
-        number));
+    comparisons.push_back(
+        compared({}, fmt::format("{} between {:.10g} and {:.10g}", *range.count, range.from, range.to),
+                 *range.count, number));
   }
   return comparisons;
 }
@@ -246,14 +247,16 @@ std::vector<ClaimComparison> compare_audits(const AuditOutcome& claimed, const A
   std::vector<ClaimComparison> comparisons{compare_verdicts(claimed, found)};
   for (const AuditGap& gap : claimed.gaps) comparisons.push_back(compare_gap(gap, found));
   for (const CriticalValue& value : claimed.missing) {
-    ClaimComparison& one = comparisons.emplace_back(
-        ClaimComparison{value.value, Agreement::kNotRepeated,
-                        fmt::format("{} missing in {}", value.multiplicity, interval_in_words(value.low, value.high)),
-                        "-", "the second path brackets no such value"});
+    ClaimComparison& one = comparisons.emplace_back(ClaimComparison{
+        value.value, Agreement::kNotRepeated,
+        fmt::format("{} missing in {}", value.multiplicity, interval_in_words(value.low, value.high)), "-",
+        "the second path brackets no such value"});
     for (const CriticalValue& other : found.missing) {
-      if (other.high < value.low || other.low > value.high || other.multiplicity != value.multiplicity) continue;
+      if (other.high < value.low || other.low > value.high || other.multiplicity != value.multiplicity)
+        continue;
       one.agreement = Agreement::kAgreed;
-      one.found = fmt::format("{} missing in {}", other.multiplicity, interval_in_words(other.low, other.high));
+      one.found =
+          fmt::format("{} missing in {}", other.multiplicity, interval_in_words(other.low, other.high));
       one.why.clear();
     }
   }
