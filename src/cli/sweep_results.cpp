@@ -7,6 +7,7 @@
 #include <iterator>
 #include <system_error>
 
+#include "cli/certificate_file.hpp"
 #include "report/count_journal.hpp"
 
 namespace stanchion::cli {
@@ -21,7 +22,11 @@ std::string content_of(const std::string& path) {
 }  // namespace
 
 Result<std::vector<JournalEntry>> SweepResults::open(const Outcome& begun) {
-  const std::string header = journal_header(request_, begun);
+  const auto support = certify_support_files(request_);
+  if (!support.ok()) return support.status();
+  std::vector<NamedDigest> files;
+  for (const CertifiedFile& file : *support) files.emplace_back(file.role, file.sha256);
+  const std::string header = journal_header(request_, begun, files);
   std::string text = content_of(path_);
   auto lines = read_journal(text, header, path_);
   if (!lines.ok()) return lines.status();

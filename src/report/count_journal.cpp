@@ -2,6 +2,9 @@
 
 #include <fmt/format.h>
 
+#include <algorithm>
+
+#include "model/claim_consistency.hpp"
 #include "model/names.hpp"
 #include "model/version.hpp"
 #include "report/claim_read.hpp"
@@ -33,13 +36,25 @@ JournalLine line_of(const Member& member, Index rows) {
   JournalLine line;
   line.number = member.at("number").index();
   line.count = read_count_claim(member);
-  const auto [least, most] = line.count.below_range;
-  if (least > most || most > rows ||
-      (line.count.below && (line.count.below != least || line.count.below != most))) {
-    member.at("below_range").wrong("not the range of this count");
-  }
+  const bool certified = line.count.certificate.level != Level::kNone;
+  if (certified && contradiction_within(line.count, rows))
+    member.at("below_range").wrong("not what its own certificate gives");
   for (const Member& event : member.at("events").items()) line.events.push_back(event_of(event));
   return line;
+}
+
+/// What a count is less than the negative pivots of its own factorization: one number for a whole sweep, of
+/// what is taken off for massless dofs or multipliers. Nothing where the certificate has no such
+/// factorization.
+std::optional<Index> taken_off(const ShiftCount& count) {
+  const Certificate& certificate = count.certificate;
+  const double resolution = certificate.resolution.value_or(0);
+  std::optional<Index> negative;
+  for (const OffsetRun& run : certificate.runs) {
+    if (run.offset == -resolution || (run.offset == resolution && run.negative == 0)) negative = run.negative;
+  }
+  if (!negative || count.below_range.first == 0) return std::nullopt;  // nothing is taken off below 0
+  return std::max(*negative - count.below_range.first, Index{-1});
 }
 
 Status bad(const std::string& path, std::size_t number, const std::string& why) {
@@ -54,11 +69,13 @@ Index rows_of(const nlohmann::json& header) {
 
 }  // namespace
 
-std::string journal_header(const Request& request, const Outcome& begun) {
+std::string journal_header(const Request& request, const Outcome& begun,
+                           const std::vector<NamedDigest>& files) {
   Json inputs = Json::array();
   for (const InputRecord& input : begun.inputs) {
     inputs.push_back({{"role", input.role}, {"sha256", input.sha256}, {"factor", json_of(input.factor)}});
   }
+  for (const auto& [role, digest] : files) inputs.push_back({{"role", role}, {"sha256", digest}});
   const SweepRequest& sweep = request.sweep;
   const Json header = {{"stanchion_sweep", 1},
                        {"version", program_version()},
@@ -88,6 +105,7 @@ std::string journal_text(const JournalLine& line) {
 Result<std::vector<JournalLine>> read_journal(std::string_view text, const std::string& header,
                                               const std::string& path) {
   std::vector<JournalLine> lines;
+  std::optional<Index> off;
   Index rows = 0;
   for (std::size_t number = 1; !text.empty(); ++number) {
     const auto end = text.find('\n');
@@ -104,6 +122,10 @@ Result<std::vector<JournalLine>> read_journal(std::string_view text, const std::
         rows = rows_of(json);
       } else {
         lines.push_back(line_of(Member(json, ""), rows));
+        const auto own = taken_off(lines.back().count);
+        if (own && (*own < 0 || *own != off.value_or(*own)))
+          return bad(path, number, "its count is not that of its factorizations");
+        if (own) off = own;
       }
     } catch (const BadMember& wrong) {
       return bad(path, number, wrong.message);

@@ -1,5 +1,6 @@
 """stanchion sweep: the staircase, refinement, the picture, interruption and resumption."""
 
+import json
 import unittest
 import xml.etree.ElementTree
 
@@ -86,6 +87,59 @@ class SweepTest(ProgramTest):
         (self.folder / "r.jsonl").write_text(text[0] + '{"number": 1}\n', encoding="utf-8")
         self.expect_failure(2, "bad-journal", "sweep", self.stiffness, "--from", 0.1, "--to", 1.0, "--points", 3,
                             "--results", "r.jsonl")
+
+    def test_results_of_another_model_are_refused(self):
+        question = ("--from", 0.1, "--to", 1.0, "--points", 3, "--results", "r.jsonl")
+        self.sweep(0, "--geometric", self.geometric, *question)
+        before = (self.folder / "r.jsonl").read_bytes()
+        other = self.matrix("other.mtx", ROWS, diagonal([-1.0000001] * ROWS))
+        held = self.folder / "fix.csv"
+        held.write_text("3\n", encoding="ascii")
+        dofs = self.folder / "dofs.csv"
+        dofs.write_text("equation,node,dof\n" + "".join(f"{k},{k},ux\n" for k in range(1, ROWS + 1)), encoding="ascii")
+        for changed in (("--geometric", other), ("--geometric", self.geometric, "--fix", held), ("--geometric", self.geometric, "--load-sign", "minus"),
+                        ("--geometric", self.geometric, "--seed", 2), ("--geometric", self.geometric, "--digits", 12),
+                        ("--geometric", self.geometric, "--dofs", dofs)):
+            self.expect_failure(2, "other-sweep", "sweep", self.stiffness, *changed, *question)
+            self.assertEqual((self.folder / "r.jsonl").read_bytes(), before)
+
+    def forged(self, change):
+        """A finished sweep whose kept counts are altered, and asked again."""
+        question = ("--geometric", self.geometric, "--from", 0.1, "--to", 1.0, "--points", 4, "--results", "r.jsonl")
+        self.sweep(0, *question)
+        path = self.folder / "r.jsonl"
+        lines = path.read_text(encoding="utf-8").splitlines()
+        altered = json.loads(lines[2])
+        change(altered)
+        path.write_text("\n".join([*lines[:2], json.dumps(altered), *lines[3:]]) + "\n", encoding="utf-8")
+        return question
+
+    def test_a_kept_count_that_its_certificate_denies_is_refused(self):
+        question = self.forged(lambda line: line.update(below=line["below"] + 1, below_range=[line["below"] + 1] * 2))
+        self.expect_failure(2, "bad-journal", "sweep", self.stiffness, *question)
+
+    def test_certified_counts_that_contradict_each_other_are_a_reported_defect(self):
+        """A machine that counted wrongly once, and certified it: more values below a smaller factor than below a larger one."""
+
+        def miscount(line):
+            many = 40
+            line.update(below=many, below_range=[many] * 2)
+            for run in line["certificate"]["runs"]:
+                run["negative"] = many
+
+        question = self.forged(miscount)
+        document = self.sweep(5, *question)
+        self.assertIn("counts-contradict", [warning["code"] for warning in document["warnings"]])
+        self.assertTrue(document["contradictions"])
+        for pair in document["contradictions"]:
+            self.assertGreater(pair["least"], pair["most"])
+            shifts = [count["shift"] for count in document["counts"]]
+            for shift in (pair["shift"], pair["other_shift"]):  # both certificates are in the document
+                certificate = document["counts"][shifts.index(shift)]["certificate"]
+                self.assertEqual(certificate["level"], "proved")
+                self.assertTrue(certificate["runs"])
+        text = self.run_program("sweep", self.stiffness, *question).stdout
+        self.assertIn("contradict", text)
 
     def test_the_answer_is_the_same_for_any_number_of_threads(self):
         arguments = ("--geometric", self.geometric, "--from", 0.1, "--to", 1.0, "--points", 5, "--refine")
