@@ -1,7 +1,8 @@
 // One job: while it runs, how far it is; then the verdict, what backs it, the drawings, and what was not checked.
 
-import { el, band, facts, table, replace, announce } from "./dom.js";
+import { el, band, facts, table, replace, announce, reduced_motion } from "./dom.js";
 import { mark } from "./mark.js";
+import { renew } from "./jobs.js";
 import { problem_box } from "./problem.js";
 import { Staircase } from "./staircase.js";
 import { Brackets, bracket_sentence } from "./brackets.js";
@@ -93,7 +94,7 @@ export class JobView {
     if (job.id !== this.id) return;
     if (!this.job) { this.early = job; return; }
     if (this.job.state !== "queued" && this.job.state !== "running" && (job.state === "queued" || job.state === "running")) return;
-    Object.assign(this.job, job);
+    renew(this.job, job);
     this.update(this.turn);
   }
 
@@ -103,7 +104,7 @@ export class JobView {
     const standing = standing_of(this.job);
     if (standing === "queued" || standing === "running" || this.drawn === standing) return;
     this.drawn = standing;
-    if (this.job.state === "done" && this.job.files.includes("result")) {
+    if (this.job.files.includes("result")) {
       try {
         const result = await this.api.result(this.id);
         if (turn !== this.turn) return;
@@ -123,7 +124,7 @@ export class JobView {
     const { job } = this;
     const standing = standing_of(job);
     const words = result?.in_words ?? [];
-    const lead = words[0] ?? job.headline ?? (standing === "failed" ? "This question has no answer" : `${COMMANDS[job.command] ?? job.command}`);
+    const lead = words[0] ?? job.headline ?? (standing === "failed" ? "This question has no answer" : standing === "cancelled" ? "Cancelled before there was an answer" : `${COMMANDS[job.command] ?? job.command}`);
     const key = JSON.stringify([standing, lead, words.length, job.cancelling]);
     if (this.head_key === `${job.id}${key}`) return;
     this.head_key = `${job.id}${key}`;
@@ -162,6 +163,7 @@ export class JobView {
       replace(this.progress, this.bar_words, this.bar, this.bar_facts);
     }
     const fraction = job.state === "running" ? fraction_of(job.progress) : null;
+    this.bar.hidden = job.state === "queued" || (fraction === null && reduced_motion());
     if (fraction === null) this.bar.removeAttribute("value"); else this.bar.value = fraction;
     const text = job.cancelling ? "It is being stopped." : job.state === "queued" ? "It waits for its turn." : `Now ${phase_in_words(job.progress?.phase)}.`;
     if (this.bar_words.textContent !== text) this.bar_words.textContent = text;
@@ -172,7 +174,11 @@ export class JobView {
 
   async draw_result(result, turn) {
     this.close();
-    const parts = [];
+    const parts = [this.job.problem ? problem_box(this.job.problem, 2) : null];
+    for (const one of result.contradictions ?? []) {
+      parts.push(problem_box({ title: "Two certificates contradict each other", detail: `At ${exact(one.shift)} there are at least ${grouped(one.least)}, at ${exact(one.other_shift)} at most ${grouped(one.most)}: counts cannot fall.`,
+        remedy: "This is a defect of the machine or the program: report it, and trust neither." }, 2));
+    }
     if (result.directions) parts.push(this.causes_part(result));
     if (result.counts) parts.push(this.staircase_part(result));
     if (result.critical) parts.push(this.brackets_part(result));

@@ -18,6 +18,11 @@ export function passes(job, { text = "", standing = "", command = "" }) {
   return text.toLowerCase().split(/\s+/).every((word) => hay.includes(word));
 }
 
+/// `known` as `job` says it now; a member that is there only at times goes with it.
+export function renew(known, job) {
+  return Object.assign(known, { cancelling: false }, job);
+}
+
 export class JobBook {
   constructor() {
     this.by_id = new Map();
@@ -61,7 +66,7 @@ export class JobBook {
     if (known) {
       const ended = (state) => state !== "queued" && state !== "running";
       if (ended(known.state) && !ended(job.state)) return;
-      Object.assign(known, job);
+      renew(known, job);
     } else {
       this.by_id.set(job.id, job);
       const at = this.place_of(job);
@@ -75,7 +80,7 @@ export class JobBook {
     let fresh = false;
     for (const job of jobs) {
       const known = this.by_id.get(job.id);
-      if (known) Object.assign(known, job);
+      if (known) renew(known, job);
       else { this.by_id.set(job.id, job); fresh = true; }
     }
     if (fresh) this.order = [...this.by_id.values()].sort(later_first);

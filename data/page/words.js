@@ -180,7 +180,7 @@ export function phase_in_words(phase) {
 
 /// 0 to 1, or null when it is not known.
 export function fraction_of(progress) {
-  if (!progress || !(progress.total > 0)) return null;
+  if (!progress || !(progress.total > 0) || !(progress.done > 0)) return null;  // many phases say only that they began
   return Math.min(1, Math.max(0, progress.done / progress.total));
 }
 

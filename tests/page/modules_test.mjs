@@ -188,10 +188,19 @@ test("a late event does not bring an ended job back to life; a list read again d
   book.put(job(1, { state: "done" }));
   book.put(job(1, { state: "running" }));
   assert.equal(book.by_id.get("j-000001").state, "done");
+  book.put(job(3, { state: "running", cancelling: true }));
+  book.put(job(3, { state: "cancelled" }));
+  assert.equal(book.by_id.get("j-000003").cancelling, false);
   book.put(job(2));
   await book.load({ jobs: async () => ({ jobs: [job(2)], total: 1, next: null }) }, 100);
   await settled();
   assert.deepEqual(book.shown.map((one) => one.id), ["j-000002"]);
+});
+
+test("a phase that says only that it began has no fraction", () => {
+  assert.equal(words.fraction_of({ phase: "order", done: 0, total: 1 }), null);
+  assert.equal(words.fraction_of({ phase: "factor", done: 0.4, total: 1 }), 0.4);
+  assert.equal(words.fraction_of(null), null);
 });
 
 test("a filter wants every word", () => {
