@@ -15,6 +15,8 @@ if(TARGET stanchion_recheck_mumps)
 endif()
 install(DIRECTORY ${PROJECT_SOURCE_DIR}/include/stanchion DESTINATION ${CMAKE_INSTALL_INCLUDEDIR})
 install(DIRECTORY ${PROJECT_SOURCE_DIR}/data/schemas DESTINATION ${CMAKE_INSTALL_DATADIR}/stanchion)
+install(FILES ${PROJECT_SOURCE_DIR}/data/openapi.json DESTINATION ${CMAKE_INSTALL_DATADIR}/stanchion)
+install(DIRECTORY ${PROJECT_SOURCE_DIR}/data/page DESTINATION ${CMAKE_INSTALL_DATADIR}/stanchion OPTIONAL)
 install(FILES ${PROJECT_SOURCE_DIR}/LICENSE DESTINATION ${CMAKE_INSTALL_DOCDIR})
 
 install(EXPORT stanchion_targets NAMESPACE stanchion:: FILE stanchion_targets.cmake DESTINATION ${package_folder})

@@ -26,6 +26,7 @@ std::vector<std::unique_ptr<stanchion::cli::Command>> all_commands() {
   commands.push_back(stanchion::cli::make_convert_command());
   commands.push_back(stanchion::cli::make_selftest_command());
   commands.push_back(stanchion::cli::make_recheck_command());
+  commands.push_back(stanchion::cli::make_serve_command());
   commands.push_back(stanchion::cli::make_describe_command());
   return commands;
 }

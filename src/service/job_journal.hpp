@@ -1,0 +1,70 @@
+// The one writer of the store: changes asked for at the same time share one transaction and one wait for the
+// disk.
+#pragma once
+
+#include <condition_variable>
+#include <functional>
+#include <future>
+#include <memory>
+#include <mutex>
+#include <string>
+#include <thread>
+#include <vector>
+
+#include "service/database.hpp"
+#include "service/job_table.hpp"
+#include "stanchion/status.hpp"
+
+namespace stanchion::service {
+
+/// Thread safe.
+class JobJournal {
+ public:
+  /// Opens or makes the database file, brings it up to date, and recovers after a crash. Errors: resource
+  /// limit "store" with what the database says.
+  static Result<std::unique_ptr<JobJournal>> open(const std::string& path);
+  ~JobJournal();
+  JobJournal(const JobJournal&) = delete;
+  JobJournal& operator=(const JobJournal&) = delete;
+
+  /// Runs `change` in a transaction and waits until the disk has it. Whatever it throws undoes the whole
+  /// transaction and comes back as failure: a change has to look before it writes.
+  Status write(const std::function<void(JobTable&)>& change);
+
+  /// Reads the last written state, side by side with the writer.
+  Status read(const std::function<void(JobTable&)>& look) const;
+
+  struct Figures {
+    std::uint64_t transactions = 0, changes = 0;
+    bool healthy = true;  ///< the last transaction went through
+  };
+  Figures figures() const;
+
+ private:
+  struct Change {
+    const std::function<void(JobTable&)>* change;
+    std::promise<Status> done;
+  };
+
+  explicit JobJournal(const std::string& path);
+  void write_all();
+  Status commit(std::vector<Change>& changes);
+
+  Database writer_;
+  std::unique_ptr<JobTable> writer_table_;
+  mutable std::mutex reader_mutex_;
+  mutable std::unique_ptr<Database> reader_;
+  mutable std::unique_ptr<JobTable> reader_table_;
+
+  mutable std::mutex mutex_;
+  std::condition_variable changed_;
+  std::vector<Change> waiting_;
+  Figures figures_;
+  bool stopping_ = false;
+  std::thread thread_;
+};
+
+/// Milliseconds since 1970.
+std::int64_t now_ms();
+
+}  // namespace stanchion::service

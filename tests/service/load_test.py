@@ -1,0 +1,65 @@
+"""Many jobs from many connections: none is lost, and the service does not grow.
+
+With STANCHION_LONG=1 a soak of 20,000 jobs; otherwise some hundred. Latency is measured by `scripts/bench service`,
+for a test must not depend on the machine's speed.
+"""
+
+import http.client
+import json
+import os
+import threading
+import time
+import unittest
+
+from client import ServiceTest, chain_text
+
+JOBS = 20_000 if os.environ.get("STANCHION_LONG") else 240
+CONNECTIONS = 20
+
+
+def figures(service):
+    lines = service.ask("GET", "/metrics").body.decode().splitlines()
+    table = dict(line.rsplit(" ", 1) for line in lines if not line.startswith("#"))
+    return float(table["process_resident_memory_bytes"]), float(table["process_open_fds"])
+
+
+class LoadTest(ServiceTest):
+    def test_jobs_from_many_connections(self):
+        (self.models / "K.mtx").write_text(chain_text(30))
+        service = self.serve("--rate", "100000")
+        body = json.dumps({"command": "check", "inputs": {"stiffness": "models/K.mtx"}})
+        ids, lock = [], threading.Lock()
+
+        def submit_some():
+            connection = http.client.HTTPConnection("127.0.0.1", service.port, timeout=120)
+            for _ in range(JOBS // CONNECTIONS):
+                answer = service.ask("POST", "/v1/jobs", body, {"Content-Type": "application/json"}, connection)
+                self.assertEqual(answer.status, 202, answer.body)
+                with lock:
+                    ids.append(answer.json()["id"])
+            connection.close()
+
+        clients = [threading.Thread(target=submit_some) for _ in range(CONNECTIONS)]
+        for client in clients:
+            client.start()
+        for client in clients:
+            client.join()
+        self.assertEqual(len(set(ids)), JOBS)
+        seen, began = [], time.monotonic()
+        done = 0
+        while done < JOBS and time.monotonic() - began < 3000:
+            time.sleep(0.2 if JOBS < 1000 else 5)
+            done = service.ask("GET", "/v1/jobs?limit=1&state=done").json()["total"]
+            seen.append((done, *figures(service)))
+        self.assertEqual(done, JOBS, service.ask("GET", "/v1/jobs?state=failed").body[:2000])
+        warm = next(entry for entry in seen if entry[0] > JOBS / 4)
+        last = seen[-1]
+        print(f"{JOBS} jobs in {time.monotonic() - began:.1f} s after the last submit; memory "
+              f"{warm[1] / 1e6:.1f} to {last[1] / 1e6:.1f} MB, open files {warm[2]:.0f} to {last[2]:.0f}", flush=True)
+        self.assertLess(last[1], warm[1] * 1.25 + 16e6)
+        self.assertLessEqual(last[2], warm[2] + 8)
+        self.assertEqual(service.stop(), 0)
+
+
+if __name__ == "__main__":
+    unittest.main()
