@@ -92,11 +92,14 @@ class Browser:
         """Until the expression is true; returns its value."""
         end = time.monotonic() + seconds
         while True:
-            value = self.run(f"((value) => (value instanceof Node ? true : value))({script})")
+            try:  # between two documents there is nothing to ask
+                value, failure = self.run(f"((value) => (value instanceof Node ? true : value))({script})"), ""
+            except RuntimeError as error:
+                value, failure = None, str(error)
             if value:
                 return value
             if time.monotonic() > end:
-                raise AssertionError(f"not within {seconds} s: {what or script}\n" + self.run("document.body.innerText.slice(0, 1500)"))
+                raise AssertionError(f"not within {seconds} s: {what or script}\n{failure}\n" + self.run("document.body?.innerText.slice(0, 1500)"))
             time.sleep(0.05)
 
     def open(self, address):
