@@ -67,6 +67,7 @@ class Audit {
 
   void take_list(const std::vector<ListedValue>& list) {
     list_ = list;
+    spans_.resize(list.size());
     std::vector<ValueSpan> spans;
     for (std::size_t k = 0; k < list.size(); ++k) spans.push_back(span_of(list[k], k));
     double low = INFINITY, high = -INFINITY;
@@ -84,6 +85,7 @@ class Audit {
       }
       span.low = std::max(span.low, from_);
       span.high = std::min(span.high, to_);
+      spans_[span.members.front()] = span;
       inside.push_back(std::move(span));
     }
     answer_.listed = static_cast<Index>(inside.size());
@@ -209,11 +211,24 @@ class Audit {
     answer_.range = {from_, to_, std::nullopt, Level::kNone, std::nullopt};
   }
 
+  /// As many listed as there are, and each within its tolerance of one of its own.
+  bool fits(const Stretch& stretch, const FoundRange* found) const {
+    if (found == nullptr || stretch.listed < 2) return true;
+    std::vector<ValueSpan> listed, certain;
+    for (const std::size_t k : stretch.members) listed.push_back(spans_[k]);
+    for (const std::size_t k : stretch.certain_spans) {
+      const FoundValues& values = found->values[k];
+      certain.push_back({values.low, values.high, values.count, {}});
+    }
+    return each_has_its_own(listed, certain);
+  }
+
   void report(const std::vector<Stretch>& stretches, const FoundRange* found) {
     bool missing = false, surplus = false;
     for (const Stretch& stretch : stretches) {
-      if (stretch.listed == stretch.certain) continue;
-      (stretch.certain > stretch.listed ? missing : surplus) = true;
+      if (stretch.listed == stretch.certain && fits(stretch, found)) continue;
+      missing = missing || stretch.certain >= stretch.listed;
+      surplus = surplus || stretch.certain <= stretch.listed;
       AuditGap gap{stretch.low, stretch.high, stretch.listed, stretch.certain, {}};
       for (const std::size_t k : stretch.members) gap.labels.push_back(label_of(k));
       answer_.gaps.push_back(std::move(gap));
@@ -267,6 +282,7 @@ class Audit {
   Outcome& outcome_;
   AuditOutcome& answer_;
   std::vector<ListedValue> list_;
+  std::vector<ValueSpan> spans_;  ///< by number in the list; empty ones outside of the range
   std::vector<ValueSpan> clusters_;
   Staircase known_;
   double from_ = 0, to_ = 0;

@@ -183,7 +183,8 @@ std::optional<std::string> contradiction_within(const AuditOutcome& audit) {
   bool missing = false, surplus = false;
   Offset difference = 0;
   for (const AuditGap& gap : audit.gaps) {
-    (gap.counted > gap.listed ? missing : surplus) = true;
+    missing = missing || gap.counted >= gap.listed;  // as many, but not those: one of each
+    surplus = surplus || gap.counted <= gap.listed;
     difference += Offset{gap.counted} - gap.listed;
   }
   const AuditVerdict follows = missing && surplus ? AuditVerdict::kMissingAndSurplus

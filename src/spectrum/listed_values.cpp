@@ -71,6 +71,24 @@ std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed,
   return stretches;
 }
 
+/// A listed span meets neighbouring certain ones only, so taking for each certain value the listed span that
+/// ends first is best (Glover, Naval Res. Logist. Q. 14 (1967)).
+bool each_has_its_own(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain) {
+  std::vector<ValueSpan> waiting = listed;
+  sort_by_low(waiting);
+  std::vector<double> open;  // ends of listed spans that have begun and have no value yet
+  std::size_t next = 0, served = 0;
+  for (const ValueSpan& span : certain) {
+    while (next < waiting.size() && waiting[next].low <= span.high) open.push_back(waiting[next++].high);
+    std::sort(open.begin(), open.end());
+    if (!open.empty() && open.front() < span.low) return false;  // its values are all behind it
+    const std::size_t many = std::min(open.size(), static_cast<std::size_t>(span.count));
+    open.erase(open.begin(), open.begin() + static_cast<std::ptrdiff_t>(many));
+    served += many;
+  }
+  return served == listed.size();
+}
+
 std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to) {
   std::vector<double> shifts{from};
   for (std::size_t k = 1; k < clusters.size(); ++k)

@@ -32,6 +32,11 @@ struct Stretch {
 std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed,
                                    const std::vector<ValueSpan>& certain, double from, double to);
 
+/// Whether every one of `listed` can have a value of its own that lies within its tolerance, out of
+/// `certain`, disjoint and ascending with as many values as their counts. Clusters whose tolerances form a
+/// chain may hold the right number without that.
+bool each_has_its_own(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain);
+
 /// Where one count each tells what every cluster holds: `from`, the middle between neighbouring clusters,
 /// `to`.
 std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to);

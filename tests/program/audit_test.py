@@ -84,6 +84,17 @@ class AuditTest(ProgramTest):
         self.assertEqual(document["verdict"], "missing_and_surplus")
         self.assertIn("a", [label for gap in document["gaps"] for label in gap["labels"]])
 
+    def test_a_chain_of_tolerances_does_not_hide_a_value_far_from_all(self):
+        # Tolerances meet from value to value, and the number is right, but none lies near the last one listed.
+        path = self.matrix("D.mtx", 4, diagonal([1, 1.1, 1.2, 9]))
+        (self.folder / "t.csv").write_text("value,tolerance\n1.1,0.2\n1.4,0.15\n1.8,0.35\n", encoding="ascii")
+        document = self.expect(1, "audit", path, "--values", "t.csv")
+        self.assertEqual(document["verdict"], "missing_and_surplus")
+        gap, = document["gaps"]
+        self.assertEqual((gap["listed"], gap["counted"]), (3, 3))
+        (self.folder / "t.csv").write_text("value,tolerance\n1.05,0.2\n1.25,0.2\n1.15,0.06\n", encoding="ascii")
+        self.expect(0, "audit", path, "--values", "t.csv")
+
     def test_hertz_and_omega2(self):
         mass = self.matrix("M.mtx", ROWS, diagonal([1] * ROWS))
         hertz = [math.sqrt(value) / (2 * math.pi) for value in FIRST]

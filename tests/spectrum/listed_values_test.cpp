@@ -39,5 +39,15 @@ TEST(ListedValues, OneShiftAGap) {
   EXPECT_EQ(shifts_in_gaps({}, 0, 5), (std::vector<double>{0, 5}));
 }
 
+TEST(ListedValues, EachNeedsAValueOfItsOwn) {
+  const std::vector<ValueSpan> certain{{1, 1, 2, {}}, {2, 2, 1, {}}};
+  EXPECT_TRUE(each_has_its_own({{0.9, 1.1, 1, {}}, {0.9, 2.1, 1, {}}, {0.5, 1.5, 1, {}}}, certain));
+  EXPECT_FALSE(
+      each_has_its_own({{0.9, 1.1, 1, {}}, {0.9, 1.1, 1, {}}, {0.5, 1.5, 1, {}}}, certain));  // three at 1
+  EXPECT_FALSE(
+      each_has_its_own({{0.9, 1.1, 1, {}}, {1.2, 1.8, 1, {}}, {1.9, 2.1, 1, {}}}, certain));  // none there
+  EXPECT_TRUE(each_has_its_own({{0.9, 3, 1, {}}, {0.9, 1, 1, {}}}, certain));
+}
+
 }  // namespace
 }  // namespace stanchion
