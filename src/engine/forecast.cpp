@@ -59,8 +59,8 @@ Result<Outcome> run_forecast(const Request& request, const RunContext& context) 
   forecast.factor_entries = structure.factor_entries;
   forecast.factor_flops = structure.factor_flops;
   forecast.peak_bytes_count = outcome.memory.forecast;
-  forecast.peak_bytes_solve =
-      outcome.memory.forecast + structure.peak_bytes_solve - structure.peak_bytes_count;
+  forecast.peak_bytes_solve = outcome.memory.forecast + with_allowance(structure.peak_bytes_solve) -
+                              with_allowance(structure.peak_bytes_count);
   forecast_time(*pencil, request, definite, forecast);
   outcome.forecast = forecast;
   finish_outcome(outcome, watch.seconds());

@@ -107,8 +107,9 @@ void ModeSearch::make_space(BlockLanczos::Operator apply, Index wanted, const Ke
   // beside the base's.
   const Offset doubles = Offset{order} * (most + 2 * wanted + 8 * kV);
   outcome_.memory.forecast =
-      std::max(outcome_.memory.forecast, resident_bytes() + doubles * Offset{sizeof(double)} +
-                                             counter_.pencil().analysis().forecast.peak_bytes_solve);
+      std::max(outcome_.memory.forecast,
+               resident_bytes() + with_allowance(doubles * Offset{sizeof(double)} +
+                                                 counter_.pencil().analysis().forecast.peak_bytes_solve));
   lanczos_.emplace(std::move(apply), order, static_cast<Index>(most),
                    CounterRandom::combine(counter_.pencil().seed(), 0x5c31), pool_);
 }

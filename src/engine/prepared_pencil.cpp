@@ -110,6 +110,10 @@ Status check_cap(const Request& request, Offset needed) {
 
 }  // namespace
 
+Offset with_allowance(Offset bytes) {
+  return bytes + bytes / 10 + (Offset{2} << 20);
+}
+
 int threads_of(const Request& request) {
   return request.threads > 0 ? request.threads : available_processors();
 }
@@ -193,7 +197,10 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   outcome.work.largest_front = forecast.largest_front;
   const Offset resident = resident_bytes();
   pencil.resident_before_ = resident;
-  outcome.memory.forecast = std::max(peak_resident_bytes(), resident + pencil.counting_bytes());
+  // A witness is sought with a factor kept in double precision, whatever the verdict's own precision.
+  const Offset numeric = request.want_witness ? std::max(pencil.counting_bytes(), forecast.peak_bytes_solve)
+                                              : pencil.counting_bytes();
+  outcome.memory.forecast = std::max(peak_resident_bytes(), resident + with_allowance(numeric));
   if (Status fits = check_cap(request, outcome.memory.forecast); !fits.ok()) return fits;
   if (forecast.factor_flops > kLongJobFlops && context.progress) context.progress("self-test", 0);
   if (forecast.factor_flops > kLongJobFlops) {
@@ -278,8 +285,8 @@ Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, con
   outcome.timings.factor += certified->seconds;
   outcome.timings.certify += certified->certify_seconds;
   if (certified->certify_seconds > 0) {  // a factor was kept
-    outcome.memory.forecast =
-        std::max(outcome.memory.forecast, resident_before_ + analysis_.forecast.peak_bytes_solve);
+    outcome.memory.forecast = std::max(
+        outcome.memory.forecast, resident_before_ + with_allowance(analysis_.forecast.peak_bytes_solve));
   }
   outcome.work.factorizations += certified->factorizations;
   outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified->delayed_pivots);
@@ -329,8 +336,8 @@ Result<std::optional<DefiniteBase>> PreparedPencil::definite_base(double factor,
   auto base = DefiniteBase::make(analysis_, combination(factor), options, pool);
   if (!base.ok()) return base.status();
   ++outcome.work.factorizations;
-  outcome.memory.forecast =
-      std::max(outcome.memory.forecast, resident_before_ + analysis_.forecast.peak_bytes_solve);
+  outcome.memory.forecast = std::max(outcome.memory.forecast,
+                                     resident_before_ + with_allowance(analysis_.forecast.peak_bytes_solve));
   outcome.risk = risk_->spent();
   if (risk_->spent() > spent_before) {
     outcome.events.push_back({has_second_ ? std::optional(factor) : std::nullopt,
@@ -407,7 +414,7 @@ Result<CertifiedInertia> PreparedPencil::certify_keeping(std::optional<double> r
   options.factor = factor_options_;
   auto certified = certify_by_offsets(analysis_, combination(0), options, pool);
   if (!certified.ok()) return certified.status();
-  outcome.memory.forecast = std::max(outcome.memory.forecast, resident_before_ + needed);
+  outcome.memory.forecast = std::max(outcome.memory.forecast, resident_before_ + with_allowance(needed));
   outcome.timings.factor += certified->seconds;
   outcome.work.factorizations += certified->factorizations;
   outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified->delayed_pivots);

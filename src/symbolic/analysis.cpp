@@ -34,7 +34,10 @@ Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   constexpr Offset kFaultProbe = 1 + 2 * kDouble;
   forecast.peak_bytes_count =
       analysis.schedule.peak_doubles * kDouble + Offset{analysis.tree.rows} * kFaultProbe;
-  forecast.peak_bytes_solve = forecast.peak_bytes_count + forecast.stored_factor_entries * kDouble;
+  // A kept factor serves blocks of eight vectors: the relative test holds ten of them and a few sums a row.
+  constexpr Offset kTest = (10 * 8 + 4) * kDouble;
+  forecast.peak_bytes_solve = std::max(forecast.peak_bytes_count, Offset{analysis.tree.rows} * kTest) +
+                              forecast.stored_factor_entries * kDouble;
   analysis.analyse_seconds = watch.seconds();
   return analysis;
 }

@@ -16,7 +16,7 @@ struct StructureForecast {
   Offset stored_factor_entries = 0;  ///< as kept in solve mode, relaxation zeros included
   Index largest_front = 0;
   Offset peak_bytes_count = 0;  ///< numeric phase, factor discarded
-  Offset peak_bytes_solve = 0;  ///< numeric phase, factor kept
+  Offset peak_bytes_solve = 0;  ///< numeric phase, factor kept, and passes over it with blocks of vectors
 };
 
 struct Analysis {
