@@ -36,10 +36,13 @@ Graph subgraph(const Graph& graph, const Buffer<Index>& local_number, const Inde
     part.start[i] = used;
     part.weight[i] = graph.weight[v];
     for (Offset k = graph.start[v]; k < graph.start[Offset{v} + 1]; ++k) {
-      part.adjacency[used++] = local_number[graph.adjacency[k]];
+      const Index neighbour = local_number[graph.adjacency[k]];
+      part.adjacency[used] = neighbour;
+      used += neighbour >= 0 ? 1 : 0;
     }
   }
   part.start[count] = used;
+  part.adjacency.shrink(used);
   return part;
 }
 

@@ -2,46 +2,166 @@
 
 #include <metis.h>
 
+#include <algorithm>
+#include <array>
+#include <cstdlib>
 #include <limits>
+#include <memory>
+#include <thread>
 #include <vector>
+
+#include "base/threads.hpp"
+#include "order/components.hpp"
 
 namespace stanchion {
 namespace {
 
-/// A view of `data` in METIS's index width, through `copy` when the widths differ.
-template <class T>
-idx_t* as_metis(const Buffer<T>& data, std::vector<idx_t>& copy) {
-  copy.assign(data.begin(), data.end());
-  return copy.data();
+constexpr Index kWholeUpTo = 3'000;  // vertices that one call of METIS orders without a cut of ours
+constexpr int kLevels = 4;           // of cuts: 16 parts keep as many threads busy
+
+/// A graph in METIS's index width.
+struct MetisGraph {
+  explicit MetisGraph(const Graph& graph)
+      : vertices(graph.vertices),
+        start(graph.start.begin(), graph.start.end()),
+        adjacency(graph.adjacency.begin(), graph.adjacency.end()),
+        weight(graph.weight.begin(), graph.weight.end()) {
+    METIS_SetDefaultOptions(options.data());
+    options[METIS_OPTION_NUMBERING] = 0;
+    options[METIS_OPTION_COMPRESS] = 0;  // the graph is compressed already, and only then are weights honoured
+    options[METIS_OPTION_CCORDER] = 0;
+    options[METIS_OPTION_SEED] = 42;
+  }
+
+  idx_t vertices;
+  std::vector<idx_t> start, adjacency, weight;
+  std::array<idx_t, METIS_NOPTIONS> options;
+};
+
+/// A part of the graph, to fill the positions from `place` on.
+struct Part {
+  Graph graph;
+  std::vector<Index> vertices;  ///< in the whole graph, ascending
+  Index place = 0;
+  bool whole = false;  ///< not to be cut further
+};
+
+Status out_of_memory() {
+  return Status::resource_limit("ordering-memory", "nested dissection ran out of memory", "",
+                                "free memory or use a smaller model");
+}
+
+/// Orders a part by METIS and writes its vertices to their positions.
+Status order_whole(const Part& part, Buffer<Index>& vertex_at) {
+  MetisGraph graph(part.graph);
+  std::vector<idx_t> order(part.vertices.size()), inverse(part.vertices.size());
+  const int status = METIS_NodeND(&graph.vertices, graph.start.data(), graph.adjacency.data(), graph.weight.data(),
+                                  graph.options.data(), order.data(), inverse.data());
+  if (status != METIS_OK) return out_of_memory();
+  for (std::size_t k = 0; k < order.size(); ++k) {
+    vertex_at[part.place + static_cast<Index>(k)] = part.vertices[static_cast<std::size_t>(order[k])];
+  }
+  return {};
+}
+
+/// What a cut leaves: both sides, or the part itself as a whole one when there is no cut worth making.
+/// The separator's positions are the part's last.
+Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
+  MetisGraph graph(part.graph);
+  std::vector<idx_t> side(part.vertices.size());
+  idx_t separator_weight = 0;
+  const int status =
+      METIS_ComputeVertexSeparator(&graph.vertices, graph.start.data(), graph.adjacency.data(), graph.weight.data(),
+                                   graph.options.data(), &separator_weight, side.data());
+  if (status != METIS_OK) return out_of_memory();
+  std::array<std::vector<Index>, 3> chosen;
+  for (std::size_t k = 0; k < side.size(); ++k) {
+    chosen[static_cast<std::size_t>(side[k])].push_back(static_cast<Index>(k));
+  }
+  if (chosen[0].empty() || chosen[1].empty()) {
+    part.whole = true;
+    left_over.push_back(std::move(part));
+    return {};
+  }
+  Index place = part.place;
+  for (const std::size_t s : {0, 1}) {
+    Buffer<Index> local(part.graph.vertices, -1);
+    Part half;
+    for (const Index v : chosen[s]) {
+      local[v] = static_cast<Index>(half.vertices.size());
+      half.vertices.push_back(part.vertices[static_cast<std::size_t>(v)]);
+    }
+    half.graph = subgraph(part.graph, local, chosen[s].data(), static_cast<Index>(chosen[s].size()));
+    half.place = place;
+    place += half.graph.vertices;
+    left_over.push_back(std::move(half));
+  }
+  for (const Index v : chosen[2]) vertex_at[place++] = part.vertices[static_cast<std::size_t>(v)];
+  return {};
+}
+
+/// Calls work(k) for k in [0, pieces), by several threads where a pool is given; the first failure in order.
+template <class Work>
+Status for_all(ThreadPool* pool, std::size_t pieces, const Work& work) {
+  std::vector<Status> found(pieces);
+  if (pool != nullptr) {
+    pool->run(static_cast<Offset>(pieces),
+              [&](Offset k, int) { found[static_cast<std::size_t>(k)] = work(static_cast<std::size_t>(k)); });
+  } else {
+    for (std::size_t k = 0; k < pieces; ++k) found[k] = work(k);
+  }
+  for (Status& status : found) {
+    if (!status.ok()) return std::move(status);
+  }
+  return {};
+}
+
+bool to_be_cut(const Part& part) { return !part.whole && part.graph.vertices > kWholeUpTo; }
+
+bool try_generator() {
+  std::srand(1);
+  const int first = std::rand();
+  std::srand(1);
+  std::thread([] { std::srand(2); }).join();
+  return std::rand() == first;
 }
 
 }  // namespace
 
-Result<Buffer<Index>> nested_dissection(const Graph& graph) {
+bool generator_is_per_thread() {
+  static const bool found = try_generator();
+  return found;
+}
+
+Result<Buffer<Index>> nested_dissection(const Graph& graph, int threads) {
   if (graph.adjacency.size() > std::numeric_limits<idx_t>::max()) {
     return Status::resource_limit("metis-index-width",
                                   "the graph has " + std::to_string(graph.adjacency.size()) +
                                       " edge ends, more than this METIS build can index",
                                   "", "give the dof map (--dofs) so that nodes, not equations, are ordered");
   }
-  idx_t vertices = graph.vertices;
-  std::vector<idx_t> start, adjacency, weight;
-  std::vector<idx_t> perm(static_cast<std::size_t>(vertices)), inverse(static_cast<std::size_t>(vertices));
-  idx_t options[METIS_NOPTIONS];
-  METIS_SetDefaultOptions(options);
-  options[METIS_OPTION_NUMBERING] = 0;
-  options[METIS_OPTION_COMPRESS] = 0;  // the graph is compressed already, and only then are weights honoured
-  options[METIS_OPTION_CCORDER] = 0;
-  options[METIS_OPTION_SEED] = 42;
-  const int status =
-      METIS_NodeND(&vertices, as_metis(graph.start, start), as_metis(graph.adjacency, adjacency),
-                   as_metis(graph.weight, weight), options, perm.data(), inverse.data());
-  if (status != METIS_OK) {
-    return Status::resource_limit("ordering-memory", "nested dissection ran out of memory", "",
-                                  "free memory or use a smaller model");
+  std::vector<Part> parts(1);
+  parts[0].graph = {graph.vertices, graph.start.clone(), graph.adjacency.clone(), graph.weight.clone()};
+  parts[0].vertices.resize(static_cast<std::size_t>(graph.vertices));
+  for (Index v = 0; v < graph.vertices; ++v) parts[0].vertices[static_cast<std::size_t>(v)] = v;
+  Buffer<Index> vertex_at(graph.vertices);
+  std::unique_ptr<ThreadPool> pool;
+  if (threads > 1 && to_be_cut(parts[0]) && generator_is_per_thread()) pool = std::make_unique<ThreadPool>(threads);
+  for (int level = 0; level < kLevels && std::any_of(parts.begin(), parts.end(), to_be_cut); ++level) {
+    std::vector<std::vector<Part>> left_over(parts.size());
+    Status done = for_all(pool.get(), parts.size(), [&](std::size_t k) {
+      if (to_be_cut(parts[k])) return cut(std::move(parts[k]), left_over[k], vertex_at);
+      left_over[k].push_back(std::move(parts[k]));
+      return Status{};
+    });
+    if (!done.ok()) return done;
+    parts.clear();
+    for (auto& some : left_over) std::move(some.begin(), some.end(), std::back_inserter(parts));
   }
-  Buffer<Index> vertex_at(vertices);
-  for (Index k = 0; k < vertices; ++k) vertex_at[k] = static_cast<Index>(perm[static_cast<std::size_t>(k)]);
+  std::stable_sort(parts.begin(), parts.end(),
+                   [](const Part& a, const Part& b) { return a.graph.vertices > b.graph.vertices; });
+  Status done = for_all(pool.get(), parts.size(), [&](std::size_t k) { return order_whole(parts[k], vertex_at); });
+  if (!done.ok()) return done;
   return vertex_at;
 }
 

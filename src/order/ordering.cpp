@@ -36,7 +36,7 @@ struct PartOrder {
   bool dissected = false;
 };
 
-Result<PartOrder> order_part(const Graph& part, bool other_order) {
+Result<PartOrder> order_part(const Graph& part, bool other_order, int threads) {
   const double degree = static_cast<double>(part.adjacency.size()) / std::max<double>(1, part.vertices);
   const bool dissect = part.vertices > kDissectAbove && !other_order;
   const bool minimum = !dissect || part.vertices <= kTryBothUpTo || degree <= kThinDegree;
@@ -47,7 +47,7 @@ Result<PartOrder> order_part(const Graph& part, bool other_order) {
     best.vertex_at = std::move(*order);
   }
   if (dissect) {
-    auto order = nested_dissection(part);
+    auto order = nested_dissection(part, threads);
     if (!order.ok()) return order.status();
     if (!minimum || predicted_flops(part, *order) < predicted_flops(part, best.vertex_at)) {
       best = {std::move(*order), true};
@@ -79,8 +79,8 @@ Grouping intersect(const Grouping& coarse, const Grouping& fine) {
 }
 
 /// Orders each connected part of `graph` and strings the parts together.
-Result<Buffer<Index>> order_parts(const Graph& graph, const Components& components, bool other_order,
-                                  Index& dissected) {
+Result<Buffer<Index>> order_parts(const Graph& graph, const Components& components,
+                                  const OrderingInput& input, Index& dissected) {
   std::vector<std::vector<Index>> members(static_cast<std::size_t>(components.count));
   Buffer<Index> local(graph.vertices);
   for (Index v = 0; v < graph.vertices; ++v) {
@@ -95,7 +95,8 @@ Result<Buffer<Index>> order_parts(const Graph& graph, const Components& componen
       vertex_at[used++] = list.front();
       continue;
     }
-    auto part = order_part(subgraph(graph, local, list.data(), static_cast<Index>(list.size())), other_order);
+    auto part = order_part(subgraph(graph, local, list.data(), static_cast<Index>(list.size())), input.other_order,
+                           input.threads);
     if (!part.ok()) return part.status();
     dissected += part->dissected ? 1 : 0;
     for (const Index v : part->vertex_at) vertex_at[used++] = list[static_cast<std::size_t>(v)];
@@ -133,7 +134,7 @@ bool is_permutation_of(const Buffer<Index>& order, Index vertices) {
 Result<Buffer<Index>> order_or_recall(const Graph& graph, const Components& components,
                                       const OrderingInput& input, Elimination& elimination) {
   if (input.known == nullptr) {
-    return order_parts(graph, components, input.other_order, elimination.dissected);
+    return order_parts(graph, components, input, elimination.dissected);
   }
   const std::string key = digest_of(graph, input.other_order);
   if (auto found = input.known->find(key); found && is_permutation_of(found->vertex_at, graph.vertices)) {
@@ -141,7 +142,7 @@ Result<Buffer<Index>> order_or_recall(const Graph& graph, const Components& comp
     elimination.dissected = found->dissected;
     return std::move(found->vertex_at);
   }
-  auto order = order_parts(graph, components, input.other_order, elimination.dissected);
+  auto order = order_parts(graph, components, input, elimination.dissected);
   if (!order.ok()) {
     input.known->give_up();
     return order.status();

@@ -16,6 +16,7 @@ struct OrderingInput {
   bool zero_diagonals_join = true;           ///< keep multipliers next to a partner
   bool other_order = false;                  ///< minimum degree everywhere: a second opinion, not the fastest
   KnownOrders* known = nullptr;              ///< orders found before; outlives the call
+  int threads = 1;                           ///< that may work at once; the order is the same for any number
 };
 
 /// The elimination order on the graph of equations with identical structure.

@@ -12,7 +12,9 @@ namespace {
 Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   Analysis analysis;
   Stopwatch watch;
-  auto elimination = order_equations(input);
+  OrderingInput by_all = input;
+  by_all.threads = workers;
+  auto elimination = order_equations(by_all);
   if (!elimination.ok()) return elimination.status();
   analysis.order_seconds = watch.seconds();
   analysis.known_order = elimination->known;

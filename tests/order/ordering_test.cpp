@@ -69,7 +69,7 @@ TEST(Orderings, ArePermutations) {
   for (int round = 0; round < 30; ++round) {
     const Graph graph = test::graph_of(random, test::random_edges(random, 5 + 20 * round, 0.05), 4);
     const auto degree = minimum_degree(graph);
-    const auto dissection = nested_dissection(graph);
+    const auto dissection = nested_dissection(graph, 1);
     ASSERT_TRUE(degree.ok() && dissection.ok());
     EXPECT_TRUE(test::is_permutation_of_all(*degree, graph.vertices));
     EXPECT_TRUE(test::is_permutation_of_all(*dissection, graph.vertices));
@@ -82,7 +82,7 @@ TEST(Orderings, SaveMostOfTheWorkOnABoxAndTheBetterOneIsKept) {
   Buffer<Index> natural(box.rows);
   std::iota(natural.begin(), natural.end(), 0);
   const double worst = flops(graph, natural), degree = flops(graph, *minimum_degree(graph)),
-               dissection = flops(graph, *nested_dissection(graph));
+               dissection = flops(graph, *nested_dissection(graph, 1));
   EXPECT_LT(degree, worst / 3);
   EXPECT_LT(dissection, worst / 3);
   const auto elimination = order_equations({&box, {}, true});

@@ -1,0 +1,97 @@
+#include "order/dissection.hpp"
+
+#include <dlfcn.h>
+#include <gtest/gtest.h>
+
+#include <algorithm>
+#include <cstdlib>
+#include <thread>
+#include <vector>
+
+#include "order/components.hpp"
+#include "order/quotient_graph.hpp"
+#include "support/generators.hpp"
+
+namespace stanchion {
+namespace {
+
+Graph grid(Index nx, Index ny, Index nz) {
+  const SymmetricMatrix box = test::laplacian(nx, ny, nz);
+  Grouping alone{box.rows, Buffer<Index>(box.rows)};
+  for (Index v = 0; v < box.rows; ++v) alone.group_of[v] = v;
+  return quotient_graph(box, alone);
+}
+
+std::vector<Index> as_vector(const Buffer<Index>& order) { return {order.begin(), order.end()}; }
+
+TEST(ThreadRandom, GivesTheNumbersOfTheCLibrary) {
+  // This program's rand() is ours; the next one in the search order is the C library's.
+  const auto seed = reinterpret_cast<void (*)(unsigned)>(dlsym(RTLD_NEXT, "srand"));
+  const auto draw = reinterpret_cast<int (*)()>(dlsym(RTLD_NEXT, "rand"));
+  ASSERT_NE(seed, nullptr);
+  ASSERT_NE(draw, nullptr);
+  for (const unsigned start : {1U, 42U, 4'000'000'000U}) {
+    seed(start);
+    std::srand(start);
+    for (int k = 0; k < 1000; ++k) ASSERT_EQ(std::rand(), draw()) << "seed " << start << ", number " << k;
+  }
+}
+
+TEST(ThreadRandom, HasAStateOfItsOwnInEachThread) {
+  ASSERT_TRUE(generator_is_per_thread());
+  std::srand(5);
+  const int first = std::rand(), second = std::rand();
+  std::srand(5);
+  EXPECT_EQ(std::rand(), first);
+  std::thread([] { std::srand(6); }).join();
+  EXPECT_EQ(std::rand(), second);
+}
+
+TEST(Dissection, IsTheSameForAnyNumberOfThreads) {
+  for (const Index depth : {1, 12}) {
+    const Graph graph = grid(160, depth == 1 ? 140 : 11, depth);
+    const auto alone = nested_dissection(graph, 1);
+    ASSERT_TRUE(alone.ok());
+    std::vector<Index> order = as_vector(*alone);
+    for (const int threads : {2, 3, 7}) {
+      const auto together = nested_dissection(graph, threads);
+      ASSERT_TRUE(together.ok());
+      EXPECT_EQ(as_vector(*together), order) << threads << " threads";
+    }
+    std::sort(order.begin(), order.end());
+    for (Index v = 0; v < graph.vertices; ++v) ASSERT_EQ(order[static_cast<std::size_t>(v)], v);
+  }
+}
+
+TEST(Dissection, LeavesWholeWhatHasNoSeparator) {
+  // Everything is joined with everything: no vertex separator leaves two sides.
+  constexpr Index kVertices = 3'100;
+  Graph graph{kVertices, Buffer<Offset>(kVertices + 1), Buffer<Index>(Offset{kVertices} * (kVertices - 1)),
+              Buffer<Index>(kVertices, 1)};
+  Offset used = 0;
+  for (Index v = 0; v < kVertices; ++v) {
+    graph.start[v] = used;
+    for (Index w = 0; w < kVertices; ++w) {
+      if (w != v) graph.adjacency[used++] = w;
+    }
+  }
+  graph.start[kVertices] = used;
+  const auto order = nested_dissection(graph, 2);
+  ASSERT_TRUE(order.ok());
+  std::vector<Index> sorted = as_vector(*order);
+  std::sort(sorted.begin(), sorted.end());
+  for (Index v = 0; v < kVertices; ++v) ASSERT_EQ(sorted[static_cast<std::size_t>(v)], v);
+}
+
+TEST(Subgraph, LeavesOutEdgesToOutside) {
+  const Graph line = grid(5, 1, 1);
+  Buffer<Index> local(5, -1);
+  const std::vector<Index> chosen{0, 1, 3};
+  for (Index k = 0; k < 3; ++k) local[chosen[static_cast<std::size_t>(k)]] = k;
+  const Graph part = subgraph(line, local, chosen.data(), 3);
+  EXPECT_EQ(std::vector<Offset>(part.start.begin(), part.start.end()), (std::vector<Offset>{0, 1, 2, 2}));
+  EXPECT_EQ(std::vector<Index>(part.adjacency.begin(), part.adjacency.end()), (std::vector<Index>{1, 0}));
+}
+
+}  // namespace
+}  // namespace stanchion
