@@ -56,8 +56,8 @@ Handler set_once(int number, Handler handler) {
   return sigaction(number, &action, &before) == 0 ? before.sa_handler : SIG_ERR;
 }
 
-/// Several threads put their handler on one signal and take it back, in any order: the first call sets it, the last
-/// takes it back, and each is told what was there before the first.
+/// Several threads put their handler on one signal and take it back, in any order: the first call sets it,
+/// the last takes it back, and each is told what was there before the first.
 class SharedHandler {
  public:
   Handler set(int number, Handler handler) {
@@ -80,8 +80,9 @@ class SharedHandler {
 
 // METIS puts a handler of its own on SIGTERM while it runs, which jumps out of whatever was interrupted: out
 // of the allocator too, whose lock then stays taken for ever. It calls signal() as System V has it, and finds
-// this one first: while a guard lives SIGINT and SIGTERM stay as they are. On SIGABRT it tells itself that memory
-// ran out; there its calls in several threads share one handler. Otherwise this does what the C library would.
+// this one first: while a guard lives SIGINT and SIGTERM stay as they are. On SIGABRT it tells itself that
+// memory ran out; there its calls in several threads share one handler. Otherwise this does what the C
+// library would.
 extern "C" __sighandler_t __sysv_signal(
     int number, __sighandler_t handler) noexcept {  // NOLINT(bugprone-reserved-identifier)
   static SharedHandler on_abort;

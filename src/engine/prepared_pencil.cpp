@@ -152,7 +152,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
 
   pencil.original_ = model.original;
   pencil.file_rows_ = outcome.rows_analysed + outcome.rows_struck;
-  MatrixFamily family = unite(members);
+  MatrixFamily family = members.size() == 1 ? family_of(std::move(model.stiffness)) : unite(members, &pool);
   model.stiffness = SymmetricMatrix{};  // the union holds everything now
   model.second.reset();
   model.added.clear();
@@ -169,9 +169,9 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   family.column_start = std::move(pattern.column_start);
   family.row = std::move(pattern.row);
   family.values[0] = std::move(pattern.value);
-  pencil.family_ = permute(family, pencil.analysis_.tree.position_of);
+  pencil.family_ = permute(family, pencil.analysis_.tree.position_of, &pool);
   family = MatrixFamily{};
-  auto scale = power_of_two_scaling(pencil.family_, pencil.combination(0).coefficients);
+  auto scale = power_of_two_scaling(pencil.family_, pencil.combination(0).coefficients, &pool);
   if (!scale.ok()) return scale.status();
   pencil.scale_ = std::move(*scale);
   outcome.scaling_sha256 =

@@ -28,7 +28,8 @@ struct MetisGraph {
         weight(graph.weight.begin(), graph.weight.end()) {
     METIS_SetDefaultOptions(options.data());
     options[METIS_OPTION_NUMBERING] = 0;
-    options[METIS_OPTION_COMPRESS] = 0;  // the graph is compressed already, and only then are weights honoured
+    options[METIS_OPTION_COMPRESS] =
+        0;  // the graph is compressed already, and only then are weights honoured
     options[METIS_OPTION_CCORDER] = 0;
     options[METIS_OPTION_SEED] = 42;
   }
@@ -55,8 +56,8 @@ Status out_of_memory() {
 Status order_whole(const Part& part, Buffer<Index>& vertex_at) {
   MetisGraph graph(part.graph);
   std::vector<idx_t> order(part.vertices.size()), inverse(part.vertices.size());
-  const int status = METIS_NodeND(&graph.vertices, graph.start.data(), graph.adjacency.data(), graph.weight.data(),
-                                  graph.options.data(), order.data(), inverse.data());
+  const int status = METIS_NodeND(&graph.vertices, graph.start.data(), graph.adjacency.data(),
+                                  graph.weight.data(), graph.options.data(), order.data(), inverse.data());
   if (status != METIS_OK) return out_of_memory();
   for (std::size_t k = 0; k < order.size(); ++k) {
     vertex_at[part.place + static_cast<Index>(k)] = part.vertices[static_cast<std::size_t>(order[k])];
@@ -71,8 +72,8 @@ Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
   std::vector<idx_t> side(part.vertices.size());
   idx_t separator_weight = 0;
   const int status =
-      METIS_ComputeVertexSeparator(&graph.vertices, graph.start.data(), graph.adjacency.data(), graph.weight.data(),
-                                   graph.options.data(), &separator_weight, side.data());
+      METIS_ComputeVertexSeparator(&graph.vertices, graph.start.data(), graph.adjacency.data(),
+                                   graph.weight.data(), graph.options.data(), &separator_weight, side.data());
   if (status != METIS_OK) return out_of_memory();
   std::array<std::vector<Index>, 3> chosen;
   for (std::size_t k = 0; k < side.size(); ++k) {
@@ -116,7 +117,9 @@ Status for_all(ThreadPool* pool, std::size_t pieces, const Work& work) {
   return {};
 }
 
-bool to_be_cut(const Part& part) { return !part.whole && part.graph.vertices > kWholeUpTo; }
+bool to_be_cut(const Part& part) {
+  return !part.whole && part.graph.vertices > kWholeUpTo;
+}
 
 bool try_generator() {
   std::srand(1);
@@ -146,7 +149,8 @@ Result<Buffer<Index>> nested_dissection(const Graph& graph, int threads) {
   for (Index v = 0; v < graph.vertices; ++v) parts[0].vertices[static_cast<std::size_t>(v)] = v;
   Buffer<Index> vertex_at(graph.vertices);
   std::unique_ptr<ThreadPool> pool;
-  if (threads > 1 && to_be_cut(parts[0]) && generator_is_per_thread()) pool = std::make_unique<ThreadPool>(threads);
+  if (threads > 1 && to_be_cut(parts[0]) && generator_is_per_thread())
+    pool = std::make_unique<ThreadPool>(threads);
   for (int level = 0; level < kLevels && std::any_of(parts.begin(), parts.end(), to_be_cut); ++level) {
     std::vector<std::vector<Part>> left_over(parts.size());
     Status done = for_all(pool.get(), parts.size(), [&](std::size_t k) {
@@ -160,7 +164,8 @@ Result<Buffer<Index>> nested_dissection(const Graph& graph, int threads) {
   }
   std::stable_sort(parts.begin(), parts.end(),
                    [](const Part& a, const Part& b) { return a.graph.vertices > b.graph.vertices; });
-  Status done = for_all(pool.get(), parts.size(), [&](std::size_t k) { return order_whole(parts[k], vertex_at); });
+  Status done =
+      for_all(pool.get(), parts.size(), [&](std::size_t k) { return order_whole(parts[k], vertex_at); });
   if (!done.ok()) return done;
   return vertex_at;
 }

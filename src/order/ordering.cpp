@@ -95,8 +95,8 @@ Result<Buffer<Index>> order_parts(const Graph& graph, const Components& componen
       vertex_at[used++] = list.front();
       continue;
     }
-    auto part = order_part(subgraph(graph, local, list.data(), static_cast<Index>(list.size())), input.other_order,
-                           input.threads);
+    auto part = order_part(subgraph(graph, local, list.data(), static_cast<Index>(list.size())),
+                           input.other_order, input.threads);
     if (!part.ok()) return part.status();
     dissected += part->dissected ? 1 : 0;
     for (const Index v : part->vertex_at) vertex_at[used++] = list[static_cast<std::size_t>(v)];

@@ -1,6 +1,6 @@
-// METIS draws from srand() and rand(), whose one state the whole process shares. A program that links this file gives
-// each thread a state of its own, so that METIS runs in several threads at once and still gives the same order.
-// The numbers are the C library's own: its generator with the same table, seeded alike.
+// METIS draws from srand() and rand(), whose one state the whole process shares. A program that links this
+// file gives each thread a state of its own, so that METIS runs in several threads at once and still gives
+// the same order. The numbers are the C library's own: its generator with the same table, seeded alike.
 #include <stdlib.h>
 
 #include <cstdint>
@@ -20,7 +20,9 @@ Generator& generator() {
 
 }  // namespace
 
-extern "C" void srand(unsigned seed) noexcept { srandom_r(seed, &generator().data); }
+extern "C" void srand(unsigned seed) noexcept {
+  srandom_r(seed, &generator().data);
+}
 
 extern "C" int rand() noexcept {
   std::int32_t number = 0;

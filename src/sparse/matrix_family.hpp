@@ -1,10 +1,12 @@
 // Several matrices on the union of their patterns: a pencil, or a sum with stated factors.
 #pragma once
 
+#include <algorithm>
 #include <span>
 #include <vector>
 
 #include "base/buffer.hpp"
+#include "base/threads.hpp"
 #include "sparse/symmetric_matrix.hpp"
 
 namespace stanchion {
@@ -21,12 +23,37 @@ struct MatrixFamily {
 };
 
 /// The union of the patterns of `members` (all of the same size, at least one). Cost: one merge over the
-/// entries.
-MatrixFamily unite(std::span<const SymmetricMatrix* const> members);
+/// entries, by all threads of `pool` if there is one; the same result for any number of them.
+MatrixFamily unite(std::span<const SymmetricMatrix* const> members, ThreadPool* pool = nullptr);
 
-/// The family with equation i renamed position_of[i]. Columns come out ascending in column, rows in no order.
-/// Cost: one counting pass and one scatter.
-MatrixFamily permute(const MatrixFamily& family, const Buffer<Index>& position_of);
+/// The family of one matrix, whose arrays it takes over when each column has its diagonal entry.
+MatrixFamily family_of(SymmetricMatrix matrix);
+
+/// The family with equation i renamed position_of[i]. Columns come out ascending in column, rows in no order
+/// but the same for any number of threads. Cost: one counting pass and one scatter; memory: a number a row
+/// and thread.
+MatrixFamily permute(const MatrixFamily& family, const Buffer<Index>& position_of,
+                     ThreadPool* pool = nullptr);
+
+/// Calls work(first, last, piece) for `pieces` ranges of columns of about as many entries each, by the
+/// threads of `pool`; one range and no thread for small families. For sums and maxima whose order does not
+/// matter.
+template <class Work>
+void for_column_ranges(ThreadPool* pool, Index columns, const Buffer<Offset>& column_start, int pieces,
+                       const Work& work) {
+  const auto bound = [&](Offset piece) {
+    if (piece == pieces) return columns;
+    const Offset wanted = column_start[columns] / pieces * piece;
+    return static_cast<Index>(std::lower_bound(column_start.begin(), column_start.begin() + columns, wanted) -
+                              column_start.begin());
+  };
+  if (pieces == 1) return work(Index{0}, columns, 0);
+  pool->run(pieces,
+            [&](Offset piece, int) { work(bound(piece), bound(piece + 1), static_cast<int>(piece)); });
+}
+
+/// How many ranges pay: one a thread, and one alone below some hundred thousand entries.
+int column_ranges(ThreadPool* pool, Offset entries);
 
 /// S (sum_t coefficients[t] values[t]) S - offset I, with S = diag(2^scale_exponent).
 struct ShiftedMatrix {

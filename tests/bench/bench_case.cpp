@@ -34,8 +34,9 @@ SymmetricMatrix second_matrix(const BenchArguments& arguments, Specimen& specime
 BenchArguments read_arguments(int argc, char** argv) {
   BenchArguments a;
   CLI::App app("Times one factorization of a specimen; one JSON line per repetition.");
-  app.add_option("model", a.model, "specimen: solid, plate, frame, lattice, column, saddle, laplace; plate-coupled: "
-                                "its middle surface 5 mm off the nodes")
+  app.add_option("model", a.model,
+                 "specimen: solid, plate, frame, lattice, column, saddle, laplace; plate-coupled: "
+                 "its middle surface 5 mm off the nodes")
       ->required();
   app.add_option("unknowns", a.unknowns, "about this many equations")->required();
   app.add_option("--threads", a.threads, "ours: workers; peers: threads of the BLAS")->capture_default_str();

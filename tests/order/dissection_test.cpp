@@ -22,7 +22,9 @@ Graph grid(Index nx, Index ny, Index nz) {
   return quotient_graph(box, alone);
 }
 
-std::vector<Index> as_vector(const Buffer<Index>& order) { return {order.begin(), order.end()}; }
+std::vector<Index> as_vector(const Buffer<Index>& order) {
+  return {order.begin(), order.end()};
+}
 
 TEST(ThreadRandom, GivesTheNumbersOfTheCLibrary) {
   // This program's rand() is ours; the next one in the search order is the C library's.
