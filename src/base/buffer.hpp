@@ -3,11 +3,14 @@
 
 #include <cstddef>
 #include <cstring>
+#include <limits>
 #include <memory>
+#include <new>
 #include <span>
 #include <type_traits>
 #include <utility>
 
+#include "base/large_pages.hpp"
 #include "stanchion/types.hpp"
 
 namespace stanchion {
@@ -20,7 +23,7 @@ class Buffer {
 
  public:
   Buffer() = default;
-  explicit Buffer(Offset size) : data_(new T[static_cast<std::size_t>(size)]), size_(size) {}
+  explicit Buffer(Offset size) : data_(allocate(size)), size_(size) {}
   Buffer(Offset size, T fill) : Buffer(size) {
     for (Offset i = 0; i < size_; ++i) data_[static_cast<std::size_t>(i)] = fill;
   }
@@ -60,7 +63,27 @@ class Buffer {
   std::span<const T> span() const { return {data(), static_cast<std::size_t>(size_)}; }
 
  private:
-  std::unique_ptr<T[]> data_;
+  struct Release {
+    std::size_t bytes = 0;  ///< 0: from the ordinary allocator
+    void operator()(T* data) const {
+      if (bytes == 0) {
+        delete[] data;
+      } else {
+        release_large_pages(data, bytes);
+      }
+    }
+  };
+  using Array = std::unique_ptr<T[], Release>;
+
+  static Array allocate(Offset size) {
+    const auto count = static_cast<std::size_t>(size);
+    if (count > std::numeric_limits<std::size_t>::max() / 2 / sizeof(T)) throw std::bad_alloc();
+    const std::size_t bytes = count * sizeof(T);
+    if (bytes < kLargePagesFrom) return Array(new T[count]);
+    return Array(static_cast<T*>(large_pages(bytes)), Release{bytes});
+  }
+
+  Array data_;
   Offset size_ = 0;
 };
 

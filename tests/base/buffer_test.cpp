@@ -67,5 +67,27 @@ TEST(Buffer, TooLargeThrows) {
   EXPECT_THROW(Buffer<double>(Offset{1} << 60), std::bad_alloc);
 }
 
+TEST(Buffer, LargeOnesHoldEveryElementAndMove) {
+  const Offset size = (Offset{9} << 20) / Offset{sizeof(double)} + 1;  // some large pages and a part of one
+  Buffer<double> large(size);
+  for (Offset i = 0; i < size; ++i) large[i] = static_cast<double>(i);
+  Buffer<double> copy = large.clone();
+  Buffer<double> moved = std::move(large);
+  EXPECT_TRUE(large.empty());  // NOLINT(bugprone-use-after-move): what moving leaves is stated
+  for (Offset i = 0; i < size; ++i) {
+    ASSERT_EQ(moved[i], static_cast<double>(i));
+    ASSERT_EQ(copy[i], static_cast<double>(i));
+  }
+  moved = Buffer<double>(3, 1.0);  // gives the large one back
+  EXPECT_EQ(moved.size(), 3);
+  moved = std::move(copy);
+  EXPECT_EQ(moved[size - 1], static_cast<double>(size - 1));
+}
+
+TEST(Buffer, SizesBeyondAllMemoryTooLargeThrows) {
+  EXPECT_THROW(Buffer<double>(Offset{1} << 60), std::bad_alloc);
+  EXPECT_THROW(Buffer<double>(std::numeric_limits<Offset>::max()), std::bad_alloc);
+}
+
 }  // namespace
 }  // namespace stanchion

@@ -58,7 +58,8 @@ TEST(MatrixFamily, IsTheSameForAnyNumberOfThreads) {
   const std::vector<double> coefficients{1, -0.4}, indefinite{1, -1.7};
   const MatrixFamily alone = unite(members), renamed = permute(alone, given.position_of);
   ASSERT_GT(alone.entries(), 200'000);
-  const auto scale = power_of_two_scaling(renamed, coefficients), other = power_of_two_scaling(renamed, indefinite);
+  const auto scale = power_of_two_scaling(renamed, coefficients),
+             other = power_of_two_scaling(renamed, indefinite);
   ASSERT_TRUE(scale.ok() && other.ok());
   for (const int threads : {2, 3, 8}) {
     ThreadPool pool(threads);
