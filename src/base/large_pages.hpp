@@ -1,5 +1,5 @@
-// Memory for large arrays straight from the system, in its large pages where it has them: hundreds of times fewer
-// page faults on first use, which cost more than the clearing itself.
+// Memory for large arrays straight from the system, in its large pages where it has them: hundreds of times
+// fewer page faults on first use, which cost more than the clearing itself.
 #pragma once
 
 #include <cstddef>
