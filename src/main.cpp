@@ -22,6 +22,7 @@ std::vector<std::unique_ptr<stanchion::cli::Command>> all_commands() {
   commands.push_back(stanchion::cli::make_audit_command());
   commands.push_back(stanchion::cli::make_locate_command());
   commands.push_back(stanchion::cli::make_forecast_command());
+  commands.push_back(stanchion::cli::make_batch_command());
   commands.push_back(stanchion::cli::make_specimen_command());
   commands.push_back(stanchion::cli::make_convert_command());
   commands.push_back(stanchion::cli::make_selftest_command());

@@ -42,6 +42,7 @@ std::unique_ptr<Command> make_specimen_command();
 std::unique_ptr<Command> make_convert_command();
 std::unique_ptr<Command> make_selftest_command();
 std::unique_ptr<Command> make_recheck_command();
+std::unique_ptr<Command> make_batch_command();
 std::unique_ptr<Command> make_describe_command();
 std::unique_ptr<Command> make_serve_command();
 

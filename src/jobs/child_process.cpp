@@ -90,6 +90,7 @@ struct Launch {
   const char* program;
   const char* working_folder;
   char* const* arguments;
+  char* const* environment;
   int input, log, progress, failure;
   rlim_t memory, cpu;
   pid_t parent;
@@ -129,7 +130,7 @@ void limit(int resource, rlim_t soft, rlim_t hard) {
   limit(RLIMIT_CORE, 0, 0);
   if (launch.memory != RLIM_INFINITY) limit(RLIMIT_DATA, launch.memory, launch.memory);
   if (launch.cpu != RLIM_INFINITY) limit(RLIMIT_CPU, launch.cpu, launch.cpu + 5);
-  ::execv(launch.program, launch.arguments);
+  ::execve(launch.program, launch.arguments, launch.environment);
   fail();
   ::_exit(126);
 }
@@ -147,6 +148,10 @@ std::string mebibytes(Offset bytes) {
 
 }  // namespace
 
+bool limits_memory() {
+  return kLimitsData;
+}
+
 Offset memory_limit_of(Offset bytes, int threads) {
   constexpr Offset kAllowance = 256 * kMebi, kAllowanceAThread = 64 * kMebi;
   return bytes + bytes / 8 + kAllowance + kAllowanceAThread * threads;
@@ -160,6 +165,17 @@ Result<ChildProcess> ChildProcess::start(const ChildPlan& plan) {
   for (std::string& word : words) pointers.push_back(word.data());
   pointers.push_back(nullptr);
 
+  // OpenBLAS starts a thread a processor, each with 128 MiB of its own, and a thread that cannot have them
+  // tries for ever. The program's own threads are none of them.
+  std::string one_thread = "OPENBLAS_NUM_THREADS=1";
+  std::vector<char*> environment;
+  for (char** variable = environ; *variable != nullptr; ++variable) {
+    if (std::strncmp(*variable, one_thread.c_str(), one_thread.find('=') + 1) != 0)
+      environment.push_back(*variable);
+  }
+  environment.push_back(one_thread.data());
+  environment.push_back(nullptr);
+
   Handle input(::open("/dev/null", O_RDONLY | O_CLOEXEC));
   const std::string log_path = plan.log.empty() ? "/dev/null" : plan.log;
   Handle log(::open(log_path.c_str(), O_WRONLY | O_CREAT | O_APPEND | O_CLOEXEC, 0666));
@@ -171,6 +187,7 @@ Result<ChildProcess> ChildProcess::start(const ChildPlan& plan) {
   Launch launch{plan.program.c_str(),
                 plan.working_folder.empty() ? nullptr : plan.working_folder.c_str(),
                 pointers.data(),
+                environment.data(),
                 input.get(),
                 log.get(),
                 progress.write.get(),

@@ -60,6 +60,9 @@ struct ChildEnd {
 /// outlives them.
 class ChildProcess {
  public:
+  /// No child: poll() and wait() give an empty end.
+  ChildProcess() = default;
+
   /// Resource limit "cannot-start" when there is no process or no handle left, or the log cannot be written.
   static Result<ChildProcess> start(const ChildPlan& plan);
 
@@ -90,7 +93,6 @@ class ChildProcess {
   void kill();
 
  private:
-  ChildProcess() = default;
   void read_pipe();
   void take_line(const std::string& line);
   ChildEnd end_of(int status);
@@ -113,5 +115,8 @@ class ChildProcess {
 /// allowance for these is added. RLIMIT_AS would also count mapped input files and the 128 MiB of address
 /// space that the allocator sets aside a thread, and RLIMIT_RSS does nothing on Linux.
 Offset memory_limit_of(Offset bytes, int threads);
+
+/// Whether this build can be limited so: a sanitizer's shadow memory would count.
+bool limits_memory();
 
 }  // namespace stanchion

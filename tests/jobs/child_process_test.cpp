@@ -60,6 +60,25 @@ TEST(ChildProcess, EndsAtItsProcessorTime) {
   EXPECT_GT(end.cpu_seconds, 0.5);
 }
 
+TEST(ChildProcess, IsLimitedInMemory) {
+  const TestFolder folder;
+  ChildPlan plan = shell("ulimit -d; echo $OPENBLAS_NUM_THREADS");
+  plan.log = folder / "log";
+  plan.memory_bytes = Offset{64} << 20;
+  plan.threads = 2;
+  EXPECT_EQ(end_of(plan).exit_code, 0);
+  const std::string limit =
+      limits_memory() ? std::to_string(memory_limit_of(*plan.memory_bytes, 2) / 1024) : "unlimited";
+  EXPECT_EQ(read_whole(folder / "log").value_or(""), limit + "\n1\n");
+  // A failure of this code, told by a child that was limited, is told with the limit.
+  ChildPlan full = shell("echo '{\"failure\":{\"code\":\"out-of-memory\"}}' >&3; exit 4");
+  full.memory_bytes = Offset{64} << 20;
+  const ChildEnd end = end_of(full);
+  EXPECT_EQ(end.kind, ChildEndKind::kMemory);
+  EXPECT_EQ(end.exit_code, 4);
+  EXPECT_NE(end.reason.find("64 MiB"), std::string::npos) << end.reason;
+}
+
 TEST(ChildProcess, HasItsOwnGroupNoInputAndItsLog) {
   const TestFolder folder;
   ChildPlan plan = shell(
