@@ -1,5 +1,7 @@
 #include <fmt/format.h>
 
+#include <cmath>
+
 #include "model/frequency.hpp"
 #include "report/numbers.hpp"
 #include "report/text_sections.hpp"
@@ -40,10 +42,12 @@ std::string list_of(const std::vector<std::string>& labels) {
 void write_audit(Page& page, const Outcome& outcome) {
   const AuditOutcome& audit = *outcome.audit;
   const CountedRange& range = audit.range;
-  page.sentence(fmt::format("{}: {} listed between {} and {}, {} counted.", verdict_in_words(audit),
-                            grouped(audit.listed), end_of(range.from, audit.in_hertz),
-                            end_of(range.to, audit.in_hertz),
-                            range.count ? grouped(*range.count) : "an unknown number"));
+  const std::string to = end_of(range.to, audit.in_hertz);
+  const std::string where = std::isfinite(range.from)
+                                ? fmt::format("between {} and {}", end_of(range.from, audit.in_hertz), to)
+                                : fmt::format("up to {}", to);
+  page.sentence(fmt::format("{}: {} listed {}, {} counted.", verdict_in_words(audit), grouped(audit.listed),
+                            where, range.count ? grouped(*range.count) : "an unknown number"));
   for (const std::string& sentence : audit.sentences) page.sentence(sentence);
   if (audit.outside > 0)
     page.sentence(fmt::format("{} outside the range left out.", counted(audit.outside, "value")));
@@ -51,8 +55,9 @@ void write_audit(Page& page, const Outcome& outcome) {
     page.blank();
     std::vector<std::vector<std::string>> rows{{"from", "to", "listed", "counted", "what is listed"}};
     for (const AuditGap& gap : audit.gaps) {
-      rows.push_back({end_of(gap.low, audit.in_hertz), end_of(gap.high, audit.in_hertz), grouped(gap.listed),
-                      grouped(gap.counted), gap.labels.empty() ? "nothing" : list_of(gap.labels)});
+      rows.push_back({std::isfinite(gap.low) ? end_of(gap.low, audit.in_hertz) : "",
+                      end_of(gap.high, audit.in_hertz), grouped(gap.listed), grouped(gap.counted),
+                      gap.labels.empty() ? "nothing" : list_of(gap.labels)});
     }
     page.table(rows, 4);
   }

@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <string_view>
 
 #include "report/numbers.hpp"
 #include "report/text_sections.hpp"
@@ -103,10 +104,20 @@ std::vector<std::vector<std::string>> rows_of(const std::vector<ShiftCount>& cou
     if (meanings) cells.push_back(std::move(meaning));
     return cells;
   };
-  std::vector<std::vector<std::string>> rows{row("shift", "count", "margin", "backed by", "counted")};
+  // On either side of 0: what is counted stands above the column, from where to where in it.
+  constexpr std::string_view kBetween = " between ";
+  const bool sides = std::all_of(counts.begin(), counts.end(), [&](const ShiftCount& count) {
+    return count.meaning.find(kBetween) != std::string::npos;
+  });
+  const std::string head =
+      sides ? counts.front().meaning.substr(0, counts.front().meaning.find(kBetween)) : "counted";
+  const auto what = [&](const std::string& meaning) {
+    return sides ? "between " + meaning.substr(meaning.find(kBetween) + kBetween.size()) : meaning;
+  };
+  std::vector<std::vector<std::string>> rows{row("shift", "count", "margin", "backed by", head)};
   for (const ShiftCount& count : counts) {
     rows.push_back(row(exact(count.shift), count_in_words(count), margin(count), backing(count, rows_counted),
-                       count.meaning));
+                       what(count.meaning)));
   }
   return rows;
 }

@@ -63,6 +63,26 @@ class SweepTest(ProgramTest):
         self.assertTrue(root.tag.endswith("svg"))
         self.assertEqual(sum(element.tag.endswith("circle") for element in root.iter()), 4)
 
+    def test_the_small_picture_is_a_staircase(self):
+        path = self.matrix("S.mtx", 4, diagonal([1.1, 2.1, 2.1, 3.1]))
+        run = self.run_program("sweep", path, "--from", 0.5, "--to", 3.5, "--points", 13)
+        rows = [line for line in run.stdout.splitlines() if line[8:11].strip().endswith("|") and line.lstrip()[0].isdigit()]
+        self.assertEqual([line.split("|")[0].strip() for line in rows], ["4", "3", "2", "1", "0"])  # top first
+        cells = {int(line.split("|")[0]): line.split("|")[1].ljust(72) for line in rows}
+        shifts = [0.5 + 0.25 * k for k in range(13)]
+        counts = [sum(value < shift for value in (1.1, 2.1, 2.1, 3.1)) for shift in shifts]
+        column = [min(int((shift - 0.5) / 3 * 72), 71) for shift in shifts]
+        for k in range(12):
+            for c in range(column[k] + 1, column[k + 1]):
+                drawn = {count for count, line in cells.items() if line[c] != " "}
+                if counts[k] == counts[k + 1]:  # known: one line at its height
+                    self.assertEqual((drawn, cells[counts[k]][c]), ({counts[k]}, "_"))
+                else:  # a rise, as high as the jump
+                    self.assertEqual(drawn, set(range(counts[k], counts[k + 1] + 1)))
+                    self.assertTrue(all(cells[count][c] == ":" for count in drawn))
+        labels = next(line for line in run.stdout.splitlines() if line.split() == ["0.5", "3.5"])
+        self.assertEqual(len(labels), 11 + 72)  # the ends stand below the ends of the picture
+
     def test_an_interrupted_sweep_goes_on_where_it_stopped(self):
         arguments = ("--geometric", self.geometric, "--from", 0.1, "--to", 1.0, "--points", 8, "--results", "r.jsonl")
         whole = self.sweep(0, *arguments)
