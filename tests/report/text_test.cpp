@@ -116,9 +116,7 @@ TEST(Text, DifferentMeaningsGetAColumn) {
   Outcome outcome = samples::counted();
   outcome.count->counts[1].meaning = "critical factors between f and 0";
   EXPECT_EQ(first_line(outcome), "All 3 counts are certified.");
-  EXPECT_TRUE(
-      says(outcome,
-           "  -2.25      3   1e-09  proof, from factors on both sides  critical factors between f and 0\n"));
+  EXPECT_TRUE(says(outcome, "  -2.25      3   1e-09  proof, from factors on both sides  between f and 0\n"));
 }
 
 TEST(Text, ASingleCountIsASentence) {
