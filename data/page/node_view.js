@@ -46,7 +46,7 @@ export class NodeView {
   caption() {
     const { view } = this;
     const parts = this.mode === "digits" ? [] : ["Blue: what moves. Orange and dashed: where it goes; its true size is open. Rings: the nodes ranked first."];
-    if (view.cell) parts.push(`Of ${grouped(view.nodes)} nodes ${grouped(view.node.length)} are drawn: all that are named or move most, and one in each cube of ${Number(view.cell.toPrecision(3))}.`);
+    if (view.cell) parts.push(`Of ${grouped(view.nodes)} nodes ${grouped(view.node.length)} are drawn: all that are named, many of those that move, and one in each cube of ${Number(view.cell.toPrecision(3))}.`);
     if (view.links_left_out) parts.push(`${grouped(view.links_left_out)} links are left out.`);
     return parts.join(" ");
   }

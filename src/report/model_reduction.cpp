@@ -15,6 +15,7 @@ using Triple = std::array<double, 3>;
 
 constexpr std::uint64_t kFinest = 1U << 20U;  ///< cells along the longest edge, three of them fit in 64 bits
 constexpr float kStill = 1e-3F;               ///< of the largest motion
+constexpr std::size_t kLargest = 64;          ///< of a crowd, kept before any other of it
 constexpr Index kNobody = -1;
 
 /// Cubes over the box of all places.
@@ -125,18 +126,23 @@ class Reducer {
     }
   }
 
-  /// The `many` nodes of the largest value above `least`.
+  /// At most `many` nodes whose value is above `least`: all of them, or the largest and then every so many,
+  /// so that the crowd is as even as it was.
   template <class Value>
   void keep_largest(std::size_t many, float least, const Value& value) {
-    std::vector<std::size_t> order;
+    std::vector<std::size_t> above;
     for (std::size_t i = 0; i < picture_.node.size(); ++i) {
-      if (value(i) > least) order.push_back(i);
+      if (value(i) > least) above.push_back(i);
     }
-    many = std::min(many, order.size());
-    std::partial_sort(
-        order.begin(), order.begin() + static_cast<std::ptrdiff_t>(many), order.end(),
-        [&](std::size_t a, std::size_t b) { return value(a) != value(b) ? value(a) > value(b) : a < b; });
-    for (std::size_t k = 0; k < many; ++k) keep(order[k]);
+    if (above.size() > many) {
+      const std::size_t first = std::min(many, kLargest), rest = many - first;
+      for (std::size_t k = 0; k < rest; ++k) keep(above[k * above.size() / rest]);
+      std::partial_sort(
+          above.begin(), above.begin() + static_cast<std::ptrdiff_t>(first), above.end(),
+          [&](std::size_t a, std::size_t b) { return value(a) != value(b) ? value(a) > value(b) : a < b; });
+      above.resize(first);
+    }
+    for (const std::size_t node : above) keep(node);
   }
 
   /// Whether the nodes lie in at most `room` cubes.

@@ -16,9 +16,10 @@ struct ReducedModel {
 };
 
 /// At most `most_nodes` nodes and `most_links` links. Kept first: the nodes that directions rank, those that
-/// move most in each direction, and those that lose most digits; the rest of the room goes to one node a cube
-/// of a grid, the one nearest to its middle. Links go between what stands for their ends. Where all nodes
-/// fit, all are kept. Reproducible; O(nodes + links) for a fixed limit. Precondition: most_nodes >= 100.
+/// move in each direction, and those that lose many digits, all of them or the largest and an even part; the
+/// rest of the room goes to one node a cube of a grid, the one nearest to its middle. Links go between what
+/// stands for their ends. Where all nodes fit, all are kept. Reproducible; O(nodes + links) for a fixed
+/// limit. Precondition: most_nodes >= 100.
 ReducedModel reduce_model(const LocateOutcome& located, std::size_t most_nodes, std::size_t most_links);
 
 }  // namespace stanchion

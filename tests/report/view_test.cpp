@@ -2,6 +2,7 @@
 #include <gtest/gtest.h>
 
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <nlohmann/json.hpp>
 #include <set>
@@ -82,6 +83,25 @@ TEST(ModelReduction, AMillionNodesKeepWhatIsNamedAndFillTheBox) {
   const int side = static_cast<int>(std::lround(99 / model.cell));
   EXPECT_EQ(cubes.size(), static_cast<std::size_t>(side) * side * side);
   EXPECT_EQ(reduce_model(located, 16000, 40000).kept, model.kept);
+}
+
+TEST(ModelReduction, OfACrowdThatMovesTheLargestStayAndTheRestIsEven) {
+  LocateOutcome located = block(100, 100, 10);
+  located.picture.links.clear();
+  std::vector<std::size_t> half;
+  for (std::size_t i = 0; i < 50000; ++i) half.push_back(i);
+  located.directions = {moving(located, half)};
+  located.directions[0].shape[31234] = {0, 0, 3};
+  const ReducedModel model = reduce_model(located, 2000, 100);
+  EXPECT_TRUE(std::binary_search(model.kept.begin(), model.kept.end(), std::size_t{31234}));
+  // About as many are kept of every fifth along y.
+  std::array<int, 5> fifths{};
+  for (const std::size_t node : model.kept) {
+    if (node < 50000) ++fifths[node / 100 % 100 / 20];
+  }
+  const auto [least, most] = std::minmax_element(fifths.begin(), fifths.end());
+  EXPECT_GT(*least, 100);
+  EXPECT_LT(*most, 2 * *least);
 }
 
 TEST(ModelReduction, LinksGoBetweenWhatStandsForTheirEnds) {
