@@ -10,14 +10,25 @@ namespace {
 
 /// Iterations a worker polls for new work before it sleeps: fork-join loops inside one front follow each
 /// other within microseconds, where a sleep and wake-up would cost more than the work.
-constexpr int kSpins = 20000;
+constexpr int kSpins = 5000;
 
 inline void relax() {
   __builtin_ia32_pause();
 }
 
+/// Polls in a row before each one offers the processor to others: whom we wait for may need it.
+constexpr int kBusyPolls = 500;
+
+void wait_a_little(int polls) {
+  if (polls < kBusyPolls) {
+    relax();
+  } else {
+    sched_yield();
+  }
+}
+
 /// Polls of an idle worker before it dozes, so that it costs little where others need the processor.
-constexpr int kIdlePolls = 50000;
+constexpr int kIdlePolls = 5000;
 constexpr std::chrono::microseconds kDoze{50};
 
 /// The pool whose piece this thread is inside, and as which worker.
@@ -90,7 +101,7 @@ void ThreadPool::assist(int worker) {
       loop.helpers.fetch_sub(1);
     }
     if (polls < kIdlePolls) {
-      relax();
+      wait_a_little(polls);
     } else {
       std::this_thread::sleep_for(kDoze);
     }
@@ -113,14 +124,15 @@ void ThreadPool::share(Offset pieces, const std::function<void(Offset)>& work) {
   loop.open = true;
   loop.drain();
   loop.open = false;
-  while (loop.helpers.load() != 0) relax();
+  for (int polls = 0; loop.helpers.load() != 0; ++polls) wait_a_little(polls);
   if (loop.failure) std::rethrow_exception(loop.failure);
 }
 
 void ThreadPool::worker_loop(int worker) {
   unsigned seen = 0;
   for (;;) {
-    for (int spin = 0; spin < kSpins && generation_.load(std::memory_order_acquire) == seen; ++spin) relax();
+    for (int spin = 0; spin < kSpins && generation_.load(std::memory_order_acquire) == seen; ++spin)
+      wait_a_little(spin);
     if (generation_.load(std::memory_order_acquire) == seen) {
       std::unique_lock lock(mutex_);
       start_.wait(lock, [&] { return generation_.load() != seen; });
@@ -171,7 +183,7 @@ void ThreadPool::start(Offset pieces, const std::function<void(Offset, int)>& wo
   start_.notify_all();
   drain(0);
   if (sharing_) assist(0);
-  for (int spin = 0; spin < kSpins && busy_.load(std::memory_order_acquire) != 0; ++spin) relax();
+  for (int spin = 0; spin < kSpins && busy_.load(std::memory_order_acquire) != 0; ++spin) wait_a_little(spin);
   if (busy_.load(std::memory_order_acquire) != 0) {
     std::unique_lock lock(mutex_);
     done_.wait(lock, [&] { return busy_.load() == 0; });
