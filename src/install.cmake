@@ -9,6 +9,8 @@ target_include_directories(stanchion INTERFACE $<INSTALL_INTERFACE:${CMAKE_INSTA
 install(TARGETS stanchion EXPORT stanchion_targets ARCHIVE DESTINATION ${CMAKE_INSTALL_LIBDIR})
 if(TARGET stanchion_program)
   install(TARGETS stanchion_program RUNTIME DESTINATION ${CMAKE_INSTALL_BINDIR})
+  install(CODE "set(PROGRAM \"$<TARGET_FILE:stanchion_program>\")\nset(MAN \"${CMAKE_INSTALL_MANDIR}\")
+set(SHARE \"${CMAKE_INSTALL_DATADIR}\")\ninclude(\"${CMAKE_CURRENT_SOURCE_DIR}/install_pages.cmake\")")
 endif()
 if(TARGET stanchion_recheck_mumps)
   install(TARGETS stanchion_recheck_mumps LIBRARY DESTINATION ${CMAKE_INSTALL_LIBDIR}/stanchion)
@@ -17,6 +19,7 @@ install(DIRECTORY ${PROJECT_SOURCE_DIR}/include/stanchion DESTINATION ${CMAKE_IN
 install(DIRECTORY ${PROJECT_SOURCE_DIR}/data/schemas DESTINATION ${CMAKE_INSTALL_DATADIR}/stanchion)
 install(FILES ${PROJECT_SOURCE_DIR}/data/openapi.json DESTINATION ${CMAKE_INSTALL_DATADIR}/stanchion)
 install(DIRECTORY ${PROJECT_SOURCE_DIR}/data/page DESTINATION ${CMAKE_INSTALL_DATADIR}/stanchion OPTIONAL)
+install(DIRECTORY ${PROJECT_SOURCE_DIR}/data/systemd DESTINATION ${CMAKE_INSTALL_DATADIR}/stanchion)
 install(FILES ${PROJECT_SOURCE_DIR}/LICENSE DESTINATION ${CMAKE_INSTALL_DOCDIR})
 
 install(EXPORT stanchion_targets NAMESPACE stanchion:: FILE stanchion_targets.cmake DESTINATION ${package_folder})

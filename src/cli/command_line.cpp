@@ -7,6 +7,8 @@
 #include <cstdio>
 #include <optional>
 
+#include "cli/configuration.hpp"
+#include "cli/terminal.hpp"
 #include "model/version.hpp"
 
 namespace stanchion::cli {
@@ -128,7 +130,8 @@ constexpr const char* kExitCodes =
     "  1  answered, not the good answer       4  a limit: memory, disk or time\n"
     "  2  bad usage or bad input              5  a defect of the program\n"
     "  130 interrupted\n\n"
-    "`stanchion COMMAND --help` lists the options of a command.";
+    "`stanchion COMMAND --help` lists the options of a command. Options that are not typed come from the\n"
+    "environment (STANCHION_MEMORY_CAP) or a file (--config FILE); --print-config says which hold.";
 
 constexpr const char* kHelpOfHelp = "print this help";
 
@@ -211,6 +214,18 @@ const DeclaredCommand* selected(const CLI::App& app, const std::vector<DeclaredC
   return nullptr;
 }
 
+std::vector<CommandTable> tables_of(const std::vector<DeclaredCommand>& commands) {
+  std::vector<CommandTable> tables;
+  for (const auto& declared : commands) {
+    CommandTable table = declared.arguments->table();
+    table.name = declared.command->name();
+    table.summary = declared.command->summary();
+    table.requestable = declared.command->requestable();
+    tables.push_back(std::move(table));
+  }
+  return tables;
+}
+
 /// Checks one argument vector against a command of its own.
 Status check_arguments(CommandFactory all_commands, const std::vector<std::string>& arguments) {
   auto commands = all_commands();
@@ -233,20 +248,14 @@ RequestRules request_rules(CommandFactory all_commands) {
   CLI::App app;
   const auto commands = all_commands();
   RequestRules rules;
-  for (const auto& declared : declare_all(app, commands)) {
-    CommandTable table = declared.arguments->table();
-    table.name = declared.command->name();
-    table.summary = declared.command->summary();
-    table.requestable = declared.command->requestable();
-    rules.commands.push_back(std::move(table));
-  }
+  rules.commands = tables_of(declare_all(app, commands));
   rules.check = [all_commands](const std::vector<std::string>& arguments) {
     return check_arguments(all_commands, arguments);
   };
   return rules;
 }
 
-Result<int> run_command_line(CommandFactory all_commands, const std::vector<std::string>& arguments) {
+Result<int> run_command_line(CommandFactory all_commands, const std::vector<std::string>& typed) {
   CLI::App app(
       "Certified inertia of large sparse stiffness matrices: is the structure stable, how many\n"
       "buckling factors or frequencies lie below a value, and how sure is that.",
@@ -258,13 +267,20 @@ Result<int> run_command_line(CommandFactory all_commands, const std::vector<std:
   app.get_formatter()->column_width(34);
   const auto commands = all_commands();
   const auto declared = declare_all(app, commands);
-  const auto printed = parse(app, declared, arguments, true);
+  const auto configured = configure(tables_of(declared), typed);
+  if (!configured.ok()) return configured.status();
+  const auto printed = parse(app, declared, configured->arguments, true);
   if (!printed.ok()) return printed.status();
   if (*printed) return **printed;
+  if (configured->print) {
+    const Status shown = print_result(*configured->print);
+    return shown.ok() ? Result<int>(0) : Result<int>(shown);
+  }
   const DeclaredCommand* asked = selected(app, declared);
   if (asked == nullptr) return Status::internal("no command was selected");
   if (Status status = asked->arguments->convert_numbers(); !status.ok()) return status;
-  return asked->command->run(Call{arguments, [all_commands] { return request_rules(all_commands); }});
+  return asked->command->run(
+      Call{configured->arguments, [all_commands] { return request_rules(all_commands); }});
 }
 
 }  // namespace stanchion::cli
