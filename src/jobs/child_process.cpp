@@ -93,6 +93,7 @@ struct Launch {
   char* const* environment;
   int input, log, progress, failure;
   rlim_t memory, cpu;
+  int niceness;
   pid_t parent;
 };
 
@@ -127,6 +128,7 @@ void limit(int resource, rlim_t soft, rlim_t hard) {
     (void)written;
     ::close(score);
   }
+  if (launch.niceness > 0) ::setpriority(PRIO_PROCESS, 0, ::getpriority(PRIO_PROCESS, 0) + launch.niceness);
   limit(RLIMIT_CORE, 0, 0);
   if (launch.memory != RLIM_INFINITY) limit(RLIMIT_DATA, launch.memory, launch.memory);
   if (launch.cpu != RLIM_INFINITY) limit(RLIMIT_CPU, launch.cpu, launch.cpu + 5);
@@ -194,6 +196,7 @@ Result<ChildProcess> ChildProcess::start(const ChildPlan& plan) {
                 failure.write.get(),
                 RLIM_INFINITY,
                 RLIM_INFINITY,
+                plan.niceness,
                 ::getpid()};
   if (plan.memory_bytes && kLimitsData) {
     launch.memory = static_cast<rlim_t>(memory_limit_of(*plan.memory_bytes, plan.threads));

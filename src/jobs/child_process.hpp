@@ -22,6 +22,7 @@ struct ChildPlan {
   std::optional<Offset> memory_bytes;       ///< what the run itself may use, see memory_limit_of
   std::optional<std::int64_t> cpu_seconds;  ///< of all its threads together
   int threads = 0;                          ///< that the child will use; 0: every processor
+  int niceness = 0;                         ///< above that of the parent
 };
 
 /// One line of --progress-fd.

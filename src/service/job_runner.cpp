@@ -17,6 +17,7 @@ constexpr std::size_t kLookAhead = 64;  // jobs behind the first that may be pre
 constexpr auto kPatience = std::chrono::seconds(30);  // then the first one is waited for
 constexpr auto kStopWait = std::chrono::seconds(10);  // between asking a child to stop and ending it
 constexpr auto kTellEvery = std::chrono::milliseconds(250);
+constexpr int kNiceness = 10;  // answering comes before computing
 constexpr auto kForecastFile = "forecast.json";
 
 /// The question about the same matrices that the forecast command can answer.
@@ -344,6 +345,7 @@ Status JobRunner::launch(Prepared& prepared) {
   plan.memory_bytes = active.needs.memory_bytes;
   plan.cpu_seconds = active.needs.cpu_seconds;
   plan.threads = active.needs.threads;
+  plan.niceness = kNiceness;
   if (active.forecasting) {
     plan.arguments = arguments_of(forecast_request(prepared.request, parts_.rules));
     plan.arguments.push_back(std::string("--json=../") + kForecastFile);
