@@ -3,7 +3,6 @@
 #include <fcntl.h>
 #include <fmt/format.h>
 #include <signal.h>
-#include <sys/file.h>
 #include <sys/stat.h>
 
 #include <condition_variable>
@@ -116,7 +115,11 @@ Status Service::Parts::open_store() {
   options.store = fs::canonical(options.store).string();
   if (Status status = make_folder(options.store + "/jobs"); !status.ok()) return status;
   lock = FileHandle(::open((options.store + "/lock").c_str(), O_RDWR | O_CREAT | O_CLOEXEC, 0600));
-  if (!lock || ::flock(lock.get(), LOCK_EX | LOCK_NB) != 0) {
+  // Of this process alone: a child that was just forked does not hold it when the service is killed.
+  struct flock whole {};
+  whole.l_type = F_WRLCK;
+  whole.l_whence = SEEK_SET;
+  if (!lock || ::fcntl(lock.get(), F_SETLK, &whole) != 0) {
     return Status::resource_limit("store-in-use", "another service works on this store", options.store,
                                   "end it, or name another folder with --store");
   }
