@@ -155,7 +155,7 @@ bool limits_memory() {
 }
 
 Offset memory_limit_of(Offset bytes, int threads) {
-  constexpr Offset kAllowance = 256 * kMebi, kAllowanceAThread = 64 * kMebi;
+  constexpr Offset kAllowance = 256 * kMebi, kAllowanceAThread = 160 * kMebi;
   return bytes + bytes / 8 + kAllowance + kAllowanceAThread * threads;
 }
 

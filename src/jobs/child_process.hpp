@@ -112,9 +112,10 @@ class ChildProcess {
 };
 
 /// The RLIMIT_DATA that goes with a run that may use `bytes`. It counts private writable memory, touched or
-/// not: thread stacks (8 MiB a thread), the buffers that a BLAS reserves at its start, allocator slack; so an
-/// allowance for these is added. RLIMIT_AS would also count mapped input files and the 128 MiB of address
-/// space that the allocator sets aside a thread, and RLIMIT_RSS does nothing on Linux.
+/// not: thread stacks (8 MiB a thread), the 128 MiB that OpenBLAS sets aside a thread that calls it (and for
+/// which it tries for ever when they are refused), allocator slack; so an allowance for these is added.
+/// RLIMIT_AS would also count mapped input files and the 128 MiB of address space that the allocator sets
+/// aside a thread, and RLIMIT_RSS does nothing on Linux.
 Offset memory_limit_of(Offset bytes, int threads);
 
 /// Whether this build can be limited so: a sanitizer's shadow memory would count.
