@@ -73,7 +73,10 @@ struct LocalAccuracy {
   std::vector<std::pair<double, Index>>
       histogram;                ///< lower edge in digits, equations; bins half a digit wide
   std::vector<DofShare> worst;  ///< share holds the digits
-  std::vector<float> by_node;   ///< the picture's nodes; may be empty
+  std::vector<float> by_node;   ///< the picture's nodes, -1 where there is no figure; may be empty
+  Index equations = 0;          ///< that have a figure
+  Index held_directions = 0;    ///< zero directions held for it
+  std::vector<DofShare> held;   ///< the equations where, the first few
 };
 
 /// What there is to draw.
@@ -93,6 +96,7 @@ struct LocateOutcome {
   double weak_below = 0;         ///< energy ratio that counts as weak
   std::optional<MassTotals> mass;
   std::optional<LocalAccuracy> accuracy;
+  std::string accuracy_note;  ///< what has no figure, or was held for it, and why; may be empty
   Picture picture;
   double seconds = 0;  ///< of locating, beyond the factorizations
 };

@@ -20,7 +20,10 @@ struct DiagnosisInput {
   const KeptFactorization& kept;        ///< of A_s - cI
   const CertifiedInertia& certified;    ///< level proved
   ModelNames names;
-  Index rightly_negative = 0;  ///< negative directions that multipliers bring along: the rank of their rows
+  Index rightly_negative =
+      0;                   ///< negative directions that multipliers bring along: the least rank of their rows
+  bool rank_known = true;  ///< that rank is certain, not the end of a range
+  bool constraints_apply = true;  ///< false: multipliers act on each other
   LocateOptions options;
   std::uint64_t seed = 1;
 };

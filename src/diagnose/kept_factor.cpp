@@ -73,6 +73,23 @@ void KeptFactor::half_solve(Columns& x) {
   });
 }
 
+void KeptFactor::each_negative_pivot(const std::function<void(Index position)>& use) const {
+  for (const FactorFront& front : factor_.fronts) {
+    for (Index k = 0; k < front.pivots; ++k) {
+      const double a = front.diagonal[k];
+      if (front.kind[k] != PivotKind::kTwoFirst) {
+        if (front.kind[k] != PivotKind::kZero && a < 0) use(front.position[k]);
+        continue;
+      }
+      const PairEigen e = pair_eigen(a, front.off_diagonal[k], front.diagonal[k + 1]);
+      for (const double value : e.value) {
+        if (value < 0) use(front.position[k]);
+      }
+      ++k;
+    }
+  }
+}
+
 Columns KeptFactor::lowest_pivot_vectors(Index most, Index* filled) {
   struct Candidate {
     double value;

@@ -1,6 +1,9 @@
 // What a kept factor of A_s - cI can do to a few vectors at once.
 #pragma once
 
+#include <functional>
+#include <vector>
+
 #include "base/threads.hpp"
 #include "diagnose/columns.hpp"
 #include "numeric/block_solve.hpp"
@@ -24,12 +27,23 @@ class KeptFactor {
   /// 0.
   void half_solve(Columns& x);
 
+  /// Negative pivots by group: group_of(position) in 0 .. groups - 1. A pair counts where its first one
+  /// stands.
+  template <class GroupOf>
+  std::vector<Index> negative_pivots(Index groups, const GroupOf& group_of) const {
+    std::vector<Index> count(static_cast<std::size_t>(groups), 0);
+    each_negative_pivot([&](Index position) { ++count[static_cast<std::size_t>(group_of(position))]; });
+    return count;
+  }
+
   /// Up to `most` vectors L^-T v, v the eigenvectors of the pivots lowest in value: on their span the matrix
   /// factored is negative, if there are as many negative pivots. Fewer columns are filled where pivots run
   /// out.
   Columns lowest_pivot_vectors(Index most, Index* filled);
 
  private:
+  void each_negative_pivot(const std::function<void(Index position)>& use) const;
+
   enum class Power { kInverse, kAbsoluteInverse, kAbsoluteRoot };
   void scale(double* block, Power power) const;
 

@@ -4,43 +4,39 @@
 #include <cmath>
 #include <numeric>
 
+#include "base/counter_random.hpp"
+
 namespace stanchion {
 namespace {
 
 constexpr int kMostRounds = 12;
+constexpr int kMostConstrainedRounds =
+    60;                            ///< the inverse serves less well where pivots belong to constraints
 constexpr double kSettled = 1e-3;  ///< residual over |value|: shapes and signs, not digits, are asked
 constexpr Index kGuards = 4;
 
 class Iteration {
  public:
-  Iteration(const Structure& s, const ShiftedMatrix& matrix, KeptFactor& factor,
-            const std::vector<NodeMotion>& motions, const NearZero& zero, double zero_limit, ThreadPool& pool)
-      : s_(s),
-        matrix_(matrix),
-        factor_(factor),
-        motions_(motions),
-        zero_(zero),
-        zero_limit_(zero_limit),
-        pool_(pool) {
-    all_.resize(static_cast<std::size_t>(s.rows));
+  Iteration(const NegativeSearch& search, ThreadPool& pool)
+      : search_(search), s_(search.structure), space_(search.constraints), pool_(pool) {
+    all_.resize(static_cast<std::size_t>(s_.rows));
     std::iota(all_.begin(), all_.end(), 0);
   }
 
   NegativePairs run(Index negative, Index most) {
     const Index wanted = std::min(negative, most);
     const Index width = whole_blocks(wanted + kGuards);
-    Index filled = 0;
-    Columns start = factor_.lowest_pivot_vectors(2 * width, &filled);
+    Columns start = first_vectors(width);
     keep_out(start);
     Index used = orthonormalise(start, all_);
-    Columns product = times(matrix_, start);
+    Columns product = applied(start);
     Ritz ritz = project(start, product, all_, used, false);
     x_ = leading(start, width, used);
     ax_ = leading(product, width, used);
     used_ = std::min(used, width);
     p_ = Columns(s_.rows, width);
     int round = 0;
-    for (; round < kMostRounds; ++round) {
+    for (; round < (space_ == nullptr ? kMostRounds : kMostConstrainedRounds); ++round) {
       ritz_ = Ritz{{ritz.value.begin(), ritz.value.begin() + used_},
                    {ritz.residual.begin(), ritz.residual.begin() + used_}};
       if (settled(wanted)) break;
@@ -50,6 +46,43 @@ class Iteration {
   }
 
  private:
+  /// The matrix, or what it is on the motions that the constraints leave: P A P.
+  Columns applied(const Columns& x) const {
+    Columns y = times(search_.matrix, x);
+    if (space_ != nullptr) space_->project(y);
+    return y;
+  }
+
+  /// The vectors of the lowest pivots; beside constraints, whose own pivots are negative, random ones, too.
+  Columns first_vectors(Index width) const {
+    Index filled = 0;
+    Columns start = search_.factor.lowest_pivot_vectors(2 * width, &filled);
+    if (space_ == nullptr) return start;
+    Columns mixed(s_.rows, 2 * width), random(s_.rows, width);
+    const CounterRandom source(search_.seed, 0x6e65676174697665ULL);
+    for (std::size_t k = 0; k + 1 < random.values.size(); k += 2) {
+      const auto [a, b] = source.gaussians(k / 2);
+      random.values[k] = a;
+      random.values[k + 1] = b;
+    }
+    space_->project(random);
+    search_.factor.solve(random);
+    for (Index i = 0; i < s_.rows; ++i) {
+      std::copy_n(random.row(i), width, mixed.row(i));
+      std::copy_n(start.row(i), std::min(width, start.count), mixed.row(i) + width);
+    }
+    space_->project(mixed);
+    return mixed;
+  }
+
+  /// Towards eigenvectors close to zero. Among constraints (A^-1 r) beside the multipliers is the inverse on
+  /// the motions they leave, of either sign; Rayleigh and Ritz choose the lowest.
+  void precondition(Columns& w) const {
+    if (space_ == nullptr) return search_.factor.solve_absolute(w);
+    search_.factor.solve(w);
+    space_->project(w);
+  }
+
   static Columns leading(const Columns& from, Index width, Index used) {
     Columns to(from.rows, width);
     for (Index i = 0; i < from.rows; ++i) {
@@ -69,21 +102,23 @@ class Iteration {
 
   /// Takes the parts along node motions and zero directions away.
   void keep_out(Columns& x) const {
-    remove(motions_, s_, x);
-    for (const PartPairs& pairs : zero_.parts) {
+    remove(search_.motions, s_, x);
+    const NearZero& zero = search_.zero;
+    for (const PartPairs& pairs : zero.parts) {
       for (Index k = 0; k < pairs.used; ++k) {
-        if (std::fabs(pairs.ritz.value[static_cast<std::size_t>(k)]) > zero_limit_) continue;
+        if (std::fabs(pairs.ritz.value[static_cast<std::size_t>(k)]) > search_.zero_limit) continue;
         std::vector<double> along(static_cast<std::size_t>(x.count), 0.0);
         for (const Index i : s_.part(pairs.part)) {
-          const double z = zero_.x.row(i)[k];
+          const double z = zero.x.row(i)[k];
           for (Index c = 0; c < x.count; ++c) along[static_cast<std::size_t>(c)] += z * x.row(i)[c];
         }
         for (const Index i : s_.part(pairs.part)) {
-          const double z = zero_.x.row(i)[k];
+          const double z = zero.x.row(i)[k];
           for (Index c = 0; c < x.count; ++c) x.row(i)[c] -= z * along[static_cast<std::size_t>(c)];
         }
       }
     }
+    if (space_ != nullptr) space_->project(x);
   }
 
   /// One Rayleigh-Ritz step on the span of x, the residuals, preconditioned and plain, and the last
@@ -99,7 +134,7 @@ class Iteration {
     // The residual itself serves eigenvalues far below zero, the preconditioned one those close to it.
     Columns plain = w;
     keep_out(plain);
-    factor_.solve_absolute(w);
+    precondition(w);
     keep_out(w);
     Columns span(s_.rows, 4 * width);
     for (Index i = 0; i < s_.rows; ++i) {
@@ -111,7 +146,7 @@ class Iteration {
     }
     const Columns before = x_;
     const Index used = orthonormalise(span, all_);
-    Columns product = times(matrix_, span);
+    Columns product = applied(span);
     Ritz ritz = project(span, product, all_, used, false);
     x_ = leading(span, width, used);
     ax_ = leading(product, width, used);
@@ -138,7 +173,8 @@ class Iteration {
     NegativePairs found;
     found.rounds = round;
     found.x = x_;
-    Columns product = times_extended(matrix_, found.x, pool_);
+    Columns product = times_extended(search_.matrix, found.x, pool_);
+    if (space_ != nullptr) space_->project(product);
     Ritz ritz = project(found.x, product, all_, used_, false);
     for (std::size_t k = 0; k < ritz.value.size() && k < static_cast<std::size_t>(wanted); ++k) {
       // An eigenvalue lies within the residual of the value (Parlett, ch. 4): only then is the sign known.
@@ -149,12 +185,9 @@ class Iteration {
     return found;
   }
 
+  const NegativeSearch& search_;
   const Structure& s_;
-  const ShiftedMatrix& matrix_;
-  KeptFactor& factor_;
-  const std::vector<NodeMotion>& motions_;
-  const NearZero& zero_;
-  double zero_limit_;
+  const ConstraintSpace* space_;
   ThreadPool& pool_;
   std::vector<Index> all_;
   Columns x_, ax_, p_;
@@ -164,11 +197,9 @@ class Iteration {
 
 }  // namespace
 
-NegativePairs find_negative(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
-                            const std::vector<NodeMotion>& motions, const NearZero& zero, double zero_limit,
-                            Index negative, Index most, ThreadPool& pool) {
+NegativePairs find_negative(const NegativeSearch& search, Index negative, Index most, ThreadPool& pool) {
   if (negative == 0 || most == 0) return {};
-  return Iteration(structure, matrix, factor, motions, zero, zero_limit, pool).run(negative, most);
+  return Iteration(search, pool).run(negative, most);
 }
 
 }  // namespace stanchion

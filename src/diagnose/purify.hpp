@@ -17,6 +17,7 @@ struct Bundle {
   LocalVectors x;            ///< scaled motions
   RigidFit rigid;            ///< when the vectors are rigid motions of their nodes; no motions otherwise
   bool whole_part = false;   ///< rigid for all of the part
+  bool chain = false;        ///< put together of overlapping motions, about as many as nodes
   bool separated = true;     ///< false: several causes may be mixed in here
 };
 

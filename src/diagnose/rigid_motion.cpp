@@ -114,6 +114,11 @@ std::vector<Triple> plain_directions(const std::vector<Triple>& vectors) {
 
 }  // namespace
 
+std::string direction_in_words(const Triple& unit) {
+  const int axis = along_axis(unit);
+  return axis >= 0 ? kAxis[axis] : triple_in_words(unit);
+}
+
 double rigid_value(const Structure& s, Index position, const Triple& centre, const RigidMotion& motion) {
   const auto p = static_cast<std::size_t>(position);
   const DofKind kind = s.kind[p];

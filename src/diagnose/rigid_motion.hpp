@@ -34,6 +34,9 @@ RigidFit fit_rigid_motions(const Structure& structure, const LocalVectors& local
 /// span turned so that plain directions come out where the span holds them.
 std::vector<std::string> motions_in_words(const RigidFit& fit);
 
+/// "x" where a unit vector lies along an axis, else "(0.6, 0.8, 0)".
+std::string direction_in_words(const std::array<double, 3>& unit);
+
 /// Displacement or turn of the dof at `position` in a rigid motion; 0 for other dofs. Nodal axes are
 /// honoured.
 double rigid_value(const Structure& structure, Index position, const std::array<double, 3>& centre,

@@ -50,14 +50,26 @@ std::string loose_part(const CauseFacts& f) {
 
 std::string mechanism(const CauseFacts& f) {
   std::string text;
-  if (f.rigid) {
+  if (f.rigid && !f.pattern) {
     text = fmt::format("{}: this part can turn against the rest without resistance, as on a hinge: {}.",
                        around(f), listed(f.motions));
   } else {
-    text = fmt::format(
-        "{}: {} no resistance (a hinge, a pinned chain, or a pattern of elements whose shapes "
-        "do not strain).",
-        around(f), f.count == 1 ? "a motion meets" : fmt::format("{} independent motions meet", f.count));
+    const std::string meets =
+        f.count == 1 ? "a motion meets" : fmt::format("{} independent motions meet", f.count);
+    text = f.chain ? fmt::format(
+                         "{}: {} no resistance, about as many as there are joints: a pinned chain, or bars "
+                         "that form no triangles.",
+                         around(f), meets)
+           : f.pattern
+               ? fmt::format(
+                     "{}: {} no resistance in which neighbouring nodes move against each other: a pattern "
+                     "that the elements do not feel, as those integrated at too few points leave "
+                     "(hourglass), or unbraced panels.",
+                     around(f), meets)
+               : fmt::format(
+                     "{}: {} no resistance (a hinge, a pinned chain, or a pattern of elements whose shapes "
+                     "do not strain).",
+                     around(f), meets);
   }
   if (!f.separated) text += " Several causes may be mixed in here; the nodes are those that move most.";
   if (!f.seam.empty()) text += " " + f.seam + ".";
@@ -75,6 +87,15 @@ std::string sentence_of(const CauseFacts& f) {
     case Cause::kMechanism:
       return mechanism(f);
     case Cause::kUnattachedDof:
+      if (f.across_bars) {
+        return fmt::format(
+            "{}{}: no stiffness at all across what holds the {} otherwise, as where bars meet in one line (a "
+            "pinned "
+            "chain): {} without any resistance.",
+            f.nodes == 1 ? "" : nodes_in_words(f.nodes) + ", among them ", f.place,
+            f.nodes == 1 ? "node" : "nodes",
+            f.count == 1 ? "one direction" : fmt::format("{} directions", f.count));
+      }
       return f.count == 1
                  ? fmt::format("{}: the equation has no stiffness at all; nothing is attached to this dof.",
                                f.place)
@@ -90,6 +111,15 @@ std::string sentence_of(const CauseFacts& f) {
           f.nodes == 1 ? f.place : fmt::format("{}, {} among them", nodes_in_words(f.nodes), f.place),
           f.count == 1 ? "one direction" : fmt::format("{} directions", f.count));
     case Cause::kNegativeSpring:
+      if (!f.other_place.empty()) {
+        return fmt::format(
+            "{} and {}: a spring between them of stiffness {:.4g} {} pushes them apart instead of back. {} "
+            "(checked "
+            "with the factor).",
+            f.place, f.other_place, f.stiffness, f.along,
+            f.essential ? "With the opposite sign one negative direction is gone"
+                        : "Taking it away takes one negative direction away");
+      }
       return fmt::format(
           "{}: a spring to the ground of stiffness {:.4g} pushes along instead of back. Taking it away takes "
           "one negative direction away (checked with the factor).",

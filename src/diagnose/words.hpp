@@ -14,8 +14,13 @@ struct CauseFacts {
   Index count = 1, nodes = 0;
   bool whole_part = false, only_part = true;  ///< the part moves as a whole; it is all there is
   bool rigid = false, separated = true, placed = false, by_connectivity = false;
-  std::string place;  ///< "node 12, ux"
-  std::string dof;    ///< "uz", for unattached dofs
+  std::string place;               ///< "node 12, ux"
+  std::string dof;                 ///< "uz", for unattached dofs
+  std::string other_place, along;  ///< a spring's other node and its direction; empty: to the ground
+  bool essential = false;          ///< the spring: without it nothing holds the motion
+  bool chain = false;              ///< as many motions as joints, or nearly
+  bool pattern = false;            ///< neighbouring nodes move against each other
+  bool across_bars = false;        ///< an unattached displacement of a node that has stiffness along others
   std::vector<std::string> motions;
   std::string seam;  ///< "nodes 12 and 840 lie at one place", when there is such a pair
   double energy = 0, stiffness = 0, digits = 0;

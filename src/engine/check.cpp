@@ -48,7 +48,7 @@ Result<Outcome> check_model(ModelInput model, const Request& request, const RunC
   auto pencil = PreparedPencil::make(model, false, request, context, pool, outcome, shared);
   if (!pencil.ok()) return pencil.status();
   const bool definite_first = multipliers.empty();
-  auto certified = locate ? certify_and_locate(*pencil, facts, request, rank.least, pool, outcome)
+  auto certified = locate ? certify_and_locate(*pencil, facts, request, rank, pool, outcome)
                           : pencil->certify(0, definite_first, 0, pool, outcome);
   if (!certified.ok()) return certified.status();
   CheckOutcome check;

@@ -58,8 +58,8 @@ LocationFacts collect_location_facts(ModelInput& model, const Request& request, 
 }
 
 Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const LocationFacts& facts,
-                                            const Request& request, Index rightly_negative, ThreadPool& pool,
-                                            Outcome& outcome) {
+                                            const Request& request, const ConstraintRank& rank,
+                                            ThreadPool& pool, Outcome& outcome) {
   const ShiftedMatrix matrix = pencil.combination(0);
   ShiftedMatrix bare = matrix;  // K alone
   for (std::size_t t = 1; t < bare.coefficients.size(); ++t) bare.coefficients[t] = 0;
@@ -71,9 +71,10 @@ Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const Locati
     auto certified = pencil.certify_keeping(resolution, 0, kept, pool, outcome);
     if (!certified.ok()) return certified.status();
     if (certified->certificate.level == Level::kNone || !kept) return certified;
-    auto diagnosis = diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare,
-                               *kept, *certified, names, rightly_negative, request.locate, pencil.seed()},
-                              pool);
+    auto diagnosis =
+        diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare, *kept, *certified,
+                  names, rank.least, rank.least == rank.most, rank.bordered, request.locate, pencil.seed()},
+                 pool);
     if (diagnosis.sharper_resolution && round < 2 && !request.resolution) {
       resolution = diagnosis.sharper_resolution;
       continue;

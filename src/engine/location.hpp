@@ -3,6 +3,7 @@
 
 #include <optional>
 
+#include "engine/constraints.hpp"
 #include "engine/model_input.hpp"
 #include "engine/pipeline.hpp"
 #include "engine/prepared_pencil.hpp"
@@ -29,11 +30,11 @@ Result<ModelInput> read_model_to_locate(const Request& request, const RunContext
 /// the node table out of `model`.
 LocationFacts collect_location_facts(ModelInput& model, const Request& request, Outcome& outcome);
 
-/// Certifies by two offsets and fills outcome.located, unless the inertia is unresolved. `rightly_negative`:
-/// negative directions that multipliers bring along. Where vectors tell apart what the inertia calls zero, it
-/// is certified again with a smaller offset.
+/// Certifies by two offsets and fills outcome.located, unless the inertia is unresolved. `rank`: of
+/// the constraints, which says how many negative directions multipliers bring along. Where vectors tell apart
+/// what the inertia calls zero, it is certified again with a smaller offset.
 Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const LocationFacts& facts,
-                                            const Request& request, Index rightly_negative, ThreadPool& pool,
-                                            Outcome& outcome);
+                                            const Request& request, const ConstraintRank& rank,
+                                            ThreadPool& pool, Outcome& outcome);
 
 }  // namespace stanchion

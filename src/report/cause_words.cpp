@@ -2,6 +2,7 @@
 
 #include <fmt/format.h>
 
+#include <algorithm>
 #include <utility>
 
 #include "report/numbers.hpp"
@@ -86,6 +87,15 @@ std::string location_headline(const LocateOutcome& located) {
 std::string accuracy_verdict(const LocalAccuracy& accuracy) {
   if (accuracy.largest >= accuracy.alarm) return "in alarm";
   return accuracy.largest >= accuracy.attention ? "deserves attention" : "nothing to report";
+}
+
+std::string held_in_words(const LocalAccuracy& accuracy) {
+  constexpr std::size_t kShown = 6;
+  std::string text;
+  const std::size_t shown = std::min(kShown, accuracy.held.size());
+  for (std::size_t k = 0; k < shown; ++k) text += (k == 0 ? "" : "; ") + dof_in_words(accuracy.held[k]);
+  const Offset rest = Offset{accuracy.held_directions} - static_cast<Offset>(shown);
+  return rest > 0 ? text + fmt::format("; and {} more", grouped(rest)) : text;
 }
 
 }  // namespace stanchion

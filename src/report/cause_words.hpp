@@ -25,4 +25,7 @@ std::string location_headline(const LocateOutcome& located);
 /// What the levels say of the worst equation.
 std::string accuracy_verdict(const LocalAccuracy& accuracy);
 
+/// "node 12 ux; node 7 uz; and 3 more": where zero directions were held for the local accuracy.
+std::string held_in_words(const LocalAccuracy& accuracy);
+
 }  // namespace stanchion

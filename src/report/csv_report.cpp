@@ -70,7 +70,9 @@ void add_location(Table& table, const LocateOutcome& located) {
     table.row("components", item, "rows", located.components[k].rows);
     table.row("components", item, "nullity", located.components[k].nullity);
   }
+  if (!located.accuracy_note.empty()) table.row("accuracy", "all", "note", located.accuracy_note);
   if (!located.accuracy) return;
+  table.row("accuracy", "all", "equations", located.accuracy->equations);
   table.row("accuracy", "all", "typical", located.accuracy->typical);
   table.row("accuracy", "all", "largest", located.accuracy->largest);
   for (const auto& [from, count] : located.accuracy->histogram)

@@ -282,7 +282,7 @@ std::string mass_to_html(const LocateOutcome& located) {
 }
 
 std::string accuracy_to_html(const LocateOutcome& located) {
-  if (!located.accuracy) return "";
+  if (!located.accuracy) return located.accuracy_note.empty() ? "" : tag("p", located.accuracy_note);
   const LocalAccuracy& accuracy = *located.accuracy;
   std::string html = fmt::format(
       "<p>log10 of k<sub>ii</sub> (K<sup>-1</sup>)<sub>ii</sub>: about so many of 16 decimal digits are lost "
@@ -292,6 +292,8 @@ std::string accuracy_to_html(const LocateOutcome& located) {
       "0.2 digits off).</p>\n",
       accuracy.typical, accuracy.largest, accuracy_verdict(accuracy), exact(accuracy.attention),
       exact(accuracy.alarm), escaped(accuracy.method), accuracy.vectors);
+  if (!located.accuracy_note.empty()) html += tag("p", located.accuracy_note);
+  if (!accuracy.held.empty()) html += tag("p", "Held at " + held_in_words(accuracy) + ".");
   html += histogram(accuracy);
   const std::string field =
       draw_field(located.picture, accuracy.by_node, std::max(accuracy.attention, accuracy.largest));

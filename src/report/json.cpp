@@ -93,9 +93,17 @@ Json json_of(const LocalAccuracy& accuracy) {
                                 [](const auto& bin) {
                                   return Json{{"from", bin.first}, {"equations", bin.second}};
                                 })},
-          {"worst", list_of(accuracy.worst, [](const DofShare& worst) {
-             Json entry = json_of(worst);
-             entry["digits"] = entry["share"];
+          {"worst", list_of(accuracy.worst,
+                            [](const DofShare& worst) {
+                              Json entry = json_of(worst);
+                              entry["digits"] = entry["share"];
+                              entry.erase("share");
+                              return entry;
+                            })},
+          {"equations", accuracy.equations},
+          {"held_directions", accuracy.held_directions},
+          {"held", list_of(accuracy.held, [](const DofShare& held) {
+             Json entry = json_of(held);
              entry.erase("share");
              return entry;
            })}};
@@ -110,6 +118,7 @@ void add_location(Json& document, const LocateOutcome& located) {
                           {"not_located", located.not_located},
                           {"weak_below", json_of(located.weak_below)},
                           {"components_left_out", located.components_left_out},
+                          {"accuracy_note", located.accuracy_note},
                           {"seconds", json_of(located.seconds)}};
   document["local_accuracy"] = located.accuracy ? json_of(*located.accuracy) : Json(nullptr);
   document["mass"] = nullptr;

@@ -447,11 +447,16 @@ std::string draw_field(const Picture& picture, const std::vector<float>& value, 
                    [&](std::size_t a, std::size_t b) { return value[a] > value[b]; });
   std::unordered_set<std::uint64_t> seen;
   std::array<std::string, kSteps> paths;
+  std::string without;  // nodes that have no figure
   const double dot_width =
       std::clamp(0.5 * std::sqrt(kWidth * kHeight / static_cast<double>(order.size())), 2.8, 11.0);
   for (const std::size_t node : order) {
     const Point p = to.at(picture.place[node]);
     if (!seen.insert(cell_of(p, kCell)).second) continue;
+    if (value[node] < 0) {
+      without += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
+      continue;
+    }
     const double part = top > 0 ? static_cast<double>(value[node]) / top : 0;
     const int step = std::clamp(static_cast<int>(part * kSteps), 0, kSteps - 1);
     paths[static_cast<std::size_t>(step)] += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
@@ -460,6 +465,7 @@ std::string draw_field(const Picture& picture, const std::vector<float>& value, 
       "<svg class=\"view\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Digits lost, by "
       "node\">\n",
       kWidth, kHeight);
+  if (!without.empty()) svg += fmt::format("<path class=\"v-dot\" d=\"{}\"/>\n", without);
   for (int step = 0; step < kSteps; ++step) {
     const std::string& path = paths[static_cast<std::size_t>(step)];
     if (!path.empty())

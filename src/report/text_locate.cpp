@@ -57,8 +57,11 @@ void write_parts(Page& page, const LocateOutcome& located) {
   page.table(rows, 3);
 }
 
-void write_accuracy(Page& page, const LocalAccuracy& accuracy) {
+void write_accuracy(Page& page, const LocateOutcome& located) {
+  if (!located.accuracy && located.accuracy_note.empty()) return;
   page.title("Local accuracy: digits that double precision loses, of 16");
+  if (!located.accuracy) return page.sentence(located.accuracy_note);
+  const LocalAccuracy& accuracy = *located.accuracy;
   page.row("typical", fmt::format("{:.1f}, at most {:.1f}; {} ({} vectors, about 0.2 digits off)",
                                   accuracy.typical, accuracy.largest, accuracy.method, accuracy.vectors));
   page.row("levels",
@@ -70,6 +73,8 @@ void write_accuracy(Page& page, const LocalAccuracy& accuracy) {
                          accuracy.worst[k].share);
   }
   page.row("most at", worst);
+  if (!accuracy.held.empty()) page.row("held at", held_in_words(accuracy));
+  if (!located.accuracy_note.empty()) page.row("but", located.accuracy_note);
 }
 
 void write_mass(Page& page, const MassTotals& mass) {
@@ -91,7 +96,7 @@ void write_locate(Page& page, const Outcome& outcome) {
   for (std::size_t k = 0; k < located.directions.size(); ++k)
     write_direction(page, located.directions[k], k + 1);
   write_parts(page, located);
-  if (located.accuracy) write_accuracy(page, *located.accuracy);
+  write_accuracy(page, located);
   if (located.mass) write_mass(page, *located.mass);
 }
 

@@ -59,6 +59,14 @@ struct PlantedModel {
     return sum;
   }
 
+  /// A spring between two nodes, along one of their dofs.
+  void add_link(std::int64_t from, std::int64_t to, const std::string& name, double stiffness) {
+    const Index a = equation(from, name), b = equation(to, name);
+    entries.push_back({a, a, stiffness});
+    entries.push_back({b, b, stiffness});
+    entries.push_back({std::max(a, b), std::min(a, b), -stiffness});
+  }
+
   void add_dof(std::int64_t to_node, const std::string& name) {
     node.push_back(to_node);
     dof.push_back(name);
@@ -117,6 +125,11 @@ struct PlantedModel {
       }
       request.input.nodes = files.text("nodes.csv", text);
     }
+    std::string multipliers;
+    for (std::size_t e = 0; e < node.size(); ++e) {
+      if (dof[e] == "multiplier") multipliers += std::to_string(e + 1) + "\n";
+    }
+    if (!multipliers.empty()) request.input.multipliers = files.text("multipliers.txt", multipliers);
     return request;
   }
 };
@@ -127,6 +140,13 @@ inline Specimen specimen_with(const std::string& name, Offset unknowns, Fault fa
   auto made = make_specimen(name, unknowns, options);
   EXPECT_TRUE(made.ok()) << made.status().to_string();
   return std::move(*made);
+}
+
+inline Outcome located(const PlantedModel& model, bool with_dofs = true, bool with_nodes = true) {
+  ModelFiles files;
+  Outcome outcome = answer(run_locate(model.request(files, with_dofs, with_nodes), {}));
+  outcome.command = "locate";
+  return outcome;
 }
 
 /// The entries of one kind.

@@ -203,6 +203,7 @@ Outcome nothing_located() {
   accuracy.largest = 8.25;
   accuracy.histogram = {{0, 20000}, {0.5, 9796}};
   accuracy.worst = {{12, "rz", 60, 8.25}, {std::nullopt, "equation 3", 3, 7}};
+  accuracy.equations = 29796;
   return outcome;
 }
 
