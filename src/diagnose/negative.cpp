@@ -26,6 +26,7 @@ class Iteration {
   NegativePairs run(Index negative, Index most) {
     const Index wanted = std::min(negative, most);
     const Index width = whole_blocks(wanted + kGuards);
+    active_ = wanted + kGuards;
     Columns start = first_vectors(width);
     keep_out(start);
     Index used = orthonormalise(start, all_);
@@ -124,10 +125,10 @@ class Iteration {
   /// One Rayleigh-Ritz step on the span of x, the residuals, preconditioned and plain, and the last
   /// directions.
   Ritz step() {
-    const Index width = x_.count;
+    const Index width = x_.count, active = std::min(used_, active_);
     Columns w(s_.rows, width);
     for (Index i = 0; i < s_.rows; ++i) {
-      for (Index c = 0; c < used_; ++c) {
+      for (Index c = 0; c < active; ++c) {
         w.row(i)[c] = ax_.row(i)[c] - ritz_.value[static_cast<std::size_t>(c)] * x_.row(i)[c];
       }
     }
@@ -147,23 +148,26 @@ class Iteration {
     const Columns before = x_;
     const Index used = orthonormalise(span, all_);
     Columns product = applied(span);
-    Ritz ritz = project(span, product, all_, used, false);
+    Ritz ritz = project(span, product, all_, used, false, width);
     x_ = leading(span, width, used);
     ax_ = leading(product, width, used);
     used_ = std::min(used, width);
     // The next directions: the new vectors less their parts along the old ones.
-    p_ = x_;
-    std::vector<double> overlap(static_cast<std::size_t>(width) * static_cast<std::size_t>(width), 0.0);
+    p_ = Columns(s_.rows, width);
+    std::vector<double> overlap(static_cast<std::size_t>(width) * static_cast<std::size_t>(active), 0.0);
+    const auto entry = [&](Index a, Index b) -> double& {
+      return overlap[static_cast<std::size_t>(a * active + b)];
+    };
     for (Index i = 0; i < s_.rows; ++i) {
       for (Index a = 0; a < width; ++a) {
-        for (Index b = 0; b < width; ++b)
-          overlap[static_cast<std::size_t>(a * width + b)] += before.row(i)[a] * x_.row(i)[b];
+        for (Index b = 0; b < active; ++b) entry(a, b) += before.row(i)[a] * x_.row(i)[b];
       }
     }
     for (Index i = 0; i < s_.rows; ++i) {
+      double* to = p_.row(i);
+      std::copy_n(x_.row(i), active, to);
       for (Index a = 0; a < width; ++a) {
-        for (Index b = 0; b < width; ++b)
-          p_.row(i)[b] -= before.row(i)[a] * overlap[static_cast<std::size_t>(a * width + b)];
+        for (Index b = 0; b < active; ++b) to[b] -= before.row(i)[a] * entry(a, b);
       }
     }
     return ritz;
@@ -193,6 +197,7 @@ class Iteration {
   Columns x_, ax_, p_;
   Ritz ritz_;
   Index used_ = 0;
+  Index active_ = 0;  ///< pairs that are improved; the blocks' other columns are along for the ride
 };
 
 }  // namespace

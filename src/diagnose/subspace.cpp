@@ -4,6 +4,7 @@
 #include <cmath>
 #include <numeric>
 
+#include "dense/blas.hpp"
 #include "diagnose/small_eigen.hpp"
 #include "numeric/extended_product.hpp"
 
@@ -13,15 +14,13 @@ namespace {
 /// What a column must keep of its length to count as independent of the ones before it.
 constexpr double kIndependent = 1e-11;
 
-/// The group's rows of x, column by column.
-std::vector<double> gathered(const Columns& x, RowGroup group) {
-  const std::size_t n = group.size();
-  std::vector<double> local(n * static_cast<std::size_t>(x.count));
-  for (std::size_t i = 0; i < n; ++i) {
+/// The group's rows [from, to) of the first `columns` of x, column by column, each `leading` long.
+void gather_rows(const Columns& x, RowGroup group, std::size_t from, std::size_t to, Index columns,
+                 double* local, std::size_t leading) {
+  for (std::size_t i = from; i < to; ++i) {
     const double* row = x.row(group[i]);
-    for (Index c = 0; c < x.count; ++c) local[static_cast<std::size_t>(c) * n + i] = row[c];
+    for (Index c = 0; c < columns; ++c) local[static_cast<std::size_t>(c) * leading + i - from] = row[c];
   }
-  return local;
 }
 
 double dot(const double* a, const double* b, std::size_t n) {
@@ -37,23 +36,38 @@ double dot(const double* a, const double* b, std::size_t n) {
   return (s0 + s1) + (s2 + s3);
 }
 
+double length(const double* a, std::size_t n) {
+  return std::sqrt(dot(a, a, n));
+}
+
+/// Takes from `columns` columns of b, each n long, their parts along the `basis` orthonormal columns of q.
+void subtract_along(const double* q, Index basis, double* b, Index columns, Index n) {
+  if (basis == 0 || columns == 0) return;
+  std::vector<double> along(static_cast<std::size_t>(basis) * static_cast<std::size_t>(columns));
+  gemm_tn(basis, columns, n, 1, q, n, b, n, 0, along.data(), basis);
+  gemm_nn(n, columns, basis, -1, q, n, along.data(), basis, 1, b, n);
+}
+
 }  // namespace
 
 Columns times(const ShiftedMatrix& matrix, const Columns& x) {
   const MatrixFamily& family = *matrix.family;
   Columns y(x.rows, x.count);
-  const Index count = x.count;
-  for (Index j = 0; j < family.rows; ++j) {
-    const double* x_j = x.row(j);
-    double* y_j = y.row(j);
-    for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-      const Index i = family.row[k];
-      const double a = matrix.entry(k, i, j) - (i == j ? matrix.offset : 0.0);
-      const double* x_i = x.row(i);
-      for (Index c = 0; c < count; ++c) y_j[c] += a * x_i[c];
-      if (i == j) continue;
-      double* y_i = y.row(i);
-      for (Index c = 0; c < count; ++c) y_i[c] += a * x_j[c];
+  for (Index first = 0; first < x.count; first += kBlockVectors) {  // eight at a time stay in registers
+    for (Index j = 0; j < family.rows; ++j) {
+      const double* x_j = x.row(j) + first;
+      double* y_j = y.row(j) + first;
+      double sum[kBlockVectors] = {};
+      for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
+        const Index i = family.row[k];
+        const double a = matrix.entry(k, i, j) - (i == j ? matrix.offset : 0.0);
+        const double* x_i = x.row(i) + first;
+        for (Index c = 0; c < kBlockVectors; ++c) sum[c] += a * x_i[c];
+        if (i == j) continue;
+        double* y_i = y.row(i) + first;
+        for (Index c = 0; c < kBlockVectors; ++c) y_i[c] += a * x_j[c];
+      }
+      for (Index c = 0; c < kBlockVectors; ++c) y_j[c] += sum[c];
     }
   }
   return y;
@@ -70,27 +84,42 @@ Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool
 }
 
 Index orthonormalise(Columns& x, RowGroup group) {
+  constexpr Index kWidth = 8;  // columns that go through the basis together
   const std::size_t n = group.size();
-  std::vector<double> local = gathered(x, group);
+  const auto rows = static_cast<Index>(n);
+  std::vector<double> local(n * static_cast<std::size_t>(x.count));
+  gather_rows(x, group, 0, n, x.count, local.data(), n);
+  const auto column = [&](Index c) { return local.data() + static_cast<std::size_t>(c) * n; };
   Index used = 0;
-  for (Index c = 0; c < x.count && static_cast<std::size_t>(used) < n; ++c) {
-    double* column = local.data() + static_cast<std::size_t>(c) * n;
-    const double before = std::sqrt(dot(column, column, n));
-    if (!(before > 0) || !std::isfinite(before)) continue;
-    for (std::size_t i = 0; i < n; ++i) column[i] /= before;
-    double length = 1;
-    for (int pass = 0; pass < 2; ++pass) {
-      for (Index e = 0; e < used; ++e) {
-        const double* earlier = local.data() + static_cast<std::size_t>(e) * n;
-        const double along = dot(earlier, column, n);
-        for (std::size_t i = 0; i < n; ++i) column[i] -= along * earlier[i];
-      }
-      length = std::sqrt(dot(column, column, n));
-      if (length < kIndependent) break;
+  for (Index first = 0; first < x.count && used < rows; first += kWidth) {
+    // The block's columns that are not zero, of unit length, next to the basis.
+    Index width = 0;
+    for (Index c = first; c < std::min(first + kWidth, x.count); ++c) {
+      const double before = length(column(c), n);
+      if (!(before > 0) || !std::isfinite(before)) continue;
+      double* to = column(used + width++);
+      const double* from = column(c);
+      for (std::size_t i = 0; i < n; ++i) to[i] = from[i] / before;
     }
-    if (length < kIndependent) continue;
-    double* to = local.data() + static_cast<std::size_t>(used++) * n;
-    for (std::size_t i = 0; i < n; ++i) to[i] = column[i] / length;
+    const Index basis = used;
+    for (int pass = 0; pass < 2; ++pass) subtract_along(local.data(), basis, column(basis), width, rows);
+    for (Index c = 0; c < width && used < rows; ++c) {
+      double* own = column(basis + c);
+      double left = length(own, n);
+      for (int pass = 0; pass < 2 && left >= kIndependent; ++pass) {
+        for (Index e = basis; e < used; ++e) {
+          const double along = dot(column(e), own, n);
+          const double* earlier = column(e);
+          for (std::size_t i = 0; i < n; ++i) own[i] -= along * earlier[i];
+        }
+        // What little is left may lie along the basis again.
+        if (pass == 0) subtract_along(local.data(), basis, own, 1, rows);
+        left = length(own, n);
+      }
+      if (left < kIndependent) continue;
+      double* to = column(used++);
+      for (std::size_t i = 0; i < n; ++i) to[i] = own[i] / left;
+    }
   }
   for (std::size_t i = 0; i < n; ++i) {
     double* row = x.row(group[i]);
@@ -99,16 +128,23 @@ Index orthonormalise(Columns& x, RowGroup group) {
   return used;
 }
 
-Ritz project(Columns& x, Columns& ax, RowGroup group, Index used, bool by_size) {
+Ritz project(Columns& x, Columns& ax, RowGroup group, Index used, bool by_size, Index keep) {
   const auto m = static_cast<std::size_t>(used);
-  std::vector<double> h(m * m, 0.0);
-  for (const Index i : group) {
-    const double* row = x.row(i);
-    const double* product = ax.row(i);
-    for (std::size_t p = 0; p < m; ++p) {
-      for (std::size_t q = 0; q < m; ++q) h[p * m + q] += row[p] * product[q];
+  const Index kept = keep < 0 ? used : std::min(used, keep);
+  if (used == 0) return {};
+  constexpr std::size_t kRows = 256;  // at a time, so that they stay in the cache
+  std::vector<double> xc(kRows * m), ac(kRows * m), h(m * m, 0.0);
+  const auto each_chunk = [&](const auto& use) {
+    for (std::size_t from = 0; from < group.size(); from += kRows) {
+      const std::size_t to = std::min(from + kRows, group.size());
+      gather_rows(x, group, from, to, used, xc.data(), kRows);
+      gather_rows(ax, group, from, to, used, ac.data(), kRows);
+      use(from, static_cast<Index>(to - from));
     }
-  }
+  };
+  each_chunk([&](std::size_t, Index rows) {
+    gemm_tn(used, used, rows, 1, xc.data(), kRows, ac.data(), kRows, 1, h.data(), used);
+  });
   for (std::size_t p = 0; p < m; ++p) {
     for (std::size_t q = p + 1; q < m; ++q) h[p * m + q] = h[q * m + p] = (h[p * m + q] + h[q * m + p]) / 2;
   }
@@ -120,27 +156,29 @@ Ritz project(Columns& x, Columns& ax, RowGroup group, Index used, bool by_size) 
       return std::fabs(eigen.values[a]) < std::fabs(eigen.values[b]);
     });
   }
-  Ritz ritz{std::vector<double>(m), std::vector<double>(m, 0.0)};
-  for (std::size_t k = 0; k < m; ++k) ritz.value[k] = eigen.values[order[k]];
-  std::vector<double> turned(m), turned_product(m);
-  for (const Index i : group) {
-    double* row = x.row(i);
-    double* product = ax.row(i);
-    for (std::size_t k = 0; k < m; ++k) {
-      double sum = 0, product_sum = 0;
-      for (std::size_t p = 0; p < m; ++p) {
-        const double v = eigen.vectors[p * m + order[k]];
-        sum += row[p] * v;
-        product_sum += product[p] * v;
-      }
-      turned[k] = sum;
-      turned_product[k] = product_sum;
-      const double r = product_sum - ritz.value[k] * sum;
-      ritz.residual[k] += r * r;
-    }
-    std::copy(turned.begin(), turned.end(), row);
-    std::copy(turned_product.begin(), turned_product.end(), product);
+  const auto k_kept = static_cast<std::size_t>(kept);
+  Ritz ritz{std::vector<double>(k_kept), std::vector<double>(k_kept, 0.0)};
+  std::vector<double> turn(m * k_kept), xt(kRows * k_kept), at(kRows * k_kept);
+  for (std::size_t k = 0; k < k_kept; ++k) {
+    ritz.value[k] = eigen.values[order[k]];
+    for (std::size_t p = 0; p < m; ++p) turn[k * m + p] = eigen.vectors[p * m + order[k]];
   }
+  each_chunk([&](std::size_t from, Index rows) {
+    gemm_nn(rows, kept, used, 1, xc.data(), kRows, turn.data(), used, 0, xt.data(), kRows);
+    gemm_nn(rows, kept, used, 1, ac.data(), kRows, turn.data(), used, 0, at.data(), kRows);
+    for (std::size_t i = 0; i < static_cast<std::size_t>(rows); ++i) {
+      double* row = x.row(group[from + i]);
+      double* product = ax.row(group[from + i]);
+      for (std::size_t k = 0; k < k_kept; ++k) {
+        row[k] = xt[k * kRows + i];
+        product[k] = at[k * kRows + i];
+        const double r = product[k] - ritz.value[k] * row[k];
+        ritz.residual[k] += r * r;
+      }
+      std::fill(row + k_kept, row + m, 0.0);
+      std::fill(product + k_kept, product + m, 0.0);
+    }
+  });
   for (double& r : ritz.residual) r = std::sqrt(r);
   return ritz;
 }

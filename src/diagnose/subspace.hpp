@@ -19,16 +19,18 @@ Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool
 /// Rows of each group, for work that keeps to one part of the structure.
 using RowGroup = std::span<const Index>;
 
-/// Gram-Schmidt, twice, over the rows of `group` only. Columns that depend on earlier ones are dropped; what
-/// is left moves to the front, the rest of the group's rows becomes zero. Returns how many are left.
+/// Gram-Schmidt by blocks, twice, over the rows of `group` only. Columns that depend on earlier ones are
+/// dropped; what is left moves to the front, the rest of the group's rows becomes zero. Returns how many are
+/// left.
 Index orthonormalise(Columns& x, RowGroup group);
 
 /// Ritz values of orthonormal columns x[0..used) with ax = A x over a group; the columns (and ax) are
 /// replaced by the Ritz vectors, ascending in |value| (or in value), and the residual norms ||A x - value x||
-/// come along.
+/// come along. Only the first `keep` pairs are formed where it is not negative; the other columns become
+/// zero.
 struct Ritz {
   std::vector<double> value, residual;
 };
-Ritz project(Columns& x, Columns& ax, RowGroup group, Index used, bool by_size);
+Ritz project(Columns& x, Columns& ax, RowGroup group, Index used, bool by_size, Index keep = -1);
 
 }  // namespace stanchion
