@@ -38,7 +38,7 @@ class NegativeNamer {
     const auto found = static_cast<Index>(pairs.ritz.value.size());
     separate_degenerate(pairs);
     springs_ = find_negative_springs(s_, e_.in.matrix, e_.rigid_probe(), e_.factor);
-    links_ = find_negative_links(s_, e_.in.matrix, pairs.x, found, e_.factor);
+    links_ = find_negative_links(s_, e_.in.matrix, pairs.x, pairs.ritz.value, e_.factor);
     spring_taken_.assign(springs_.size(), 0);
     link_taken_.assign(links_.size(), 0);
     for (Index k = 0; k < found; ++k) add_negative_pair(pairs, k);

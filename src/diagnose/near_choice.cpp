@@ -41,9 +41,9 @@ void look_near_zero(Evidence& e) {
   const Index left = e.inertia.zero - static_cast<Index>(e.motions.size());
   Index columns = whole_blocks(std::min(std::max<Index>(left, 0) + kSpareColumns, kMostColumns));
   for (;;) {
-    e.near =
-        find_near_zero(e.s, e.in.matrix, e.factor, e.motions,
-                       {columns, std::max(e.in.options.weak_below, 2 * e.resolution), e.in.seed}, e.pool);
+    e.near = find_near_zero(
+        e.s, e.in.matrix, e.factor, e.motions,
+        {columns, std::max(e.in.options.weak_below, 2 * e.resolution), 2 * e.resolution, e.in.seed}, e.pool);
     // Weak directions that fill all columns of a part hide whether they stand apart.
     if (columns >= 3 * kBlockVectors || !full_of_weak(e)) return;
     columns += kBlockVectors;

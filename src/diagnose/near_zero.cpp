@@ -11,6 +11,8 @@ namespace {
 constexpr int kMostRounds = 8;
 /// A residual that rounding alone explains, and the relative accuracy asked of a value above that.
 constexpr double kRoundingResidual = 3e-15, kRelativeResidual = 1e-4;
+constexpr double kRoughResidual = 0.1;  ///< of the first pair behind the gap
+constexpr double kGapInSight = 20;      ///< estimates from above only bring values closer together
 
 Columns random_columns(Index rows, Index count, std::uint64_t seed) {
   Columns x(rows, count);
@@ -23,14 +25,27 @@ Columns random_columns(Index rows, Index count, std::uint64_t seed) {
   return x;
 }
 
-/// The largest residual among wanted pairs, over what is asked of it.
-double open_residual(const NearZero& found, double wanted) {
+/// Pairs of a part that must settle: up to the last gap in sight, or up to what may be zero.
+std::size_t pairs_to_settle(const PartPairs& pairs, Index columns, const NearZeroOptions& options) {
+  const std::vector<double>& value = pairs.ritz.value;
+  std::size_t last = 0;
+  for (std::size_t k = 0; k < value.size() && std::fabs(value[k]) <= options.wanted; ++k) {
+    const bool gap = k + 1 < value.size() ? std::fabs(value[k + 1]) > kGapInSight * std::fabs(value[k])
+                                          : pairs.used < columns;
+    if (gap || std::fabs(value[k]) <= options.zero) last = k + 1;
+  }
+  return last;
+}
+
+/// The largest residual among pairs that must settle, over what is asked of it. The one behind them only has
+/// to show how far away it is.
+double open_residual(const NearZero& found, const NearZeroOptions& options) {
   double most = 0;
   for (const PartPairs& pairs : found.parts) {
-    for (std::size_t k = 0; k < pairs.ritz.value.size(); ++k) {
-      const double size = std::fabs(pairs.ritz.value[k]);
-      if (size > wanted) continue;
-      most = std::max(most, pairs.ritz.residual[k] / std::max(kRoundingResidual, kRelativeResidual * size));
+    const std::size_t last = pairs_to_settle(pairs, found.x.count, options);
+    for (std::size_t k = 0; k < std::min(last + 1, pairs.ritz.value.size()) && last > 0; ++k) {
+      const double asked = (k == last ? kRoughResidual : kRelativeResidual) * std::fabs(pairs.ritz.value[k]);
+      most = std::max(most, pairs.ritz.residual[k] / std::max(kRoundingResidual, asked));
     }
   }
   return most;
@@ -59,9 +74,9 @@ NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix,
     if (round == 1) continue;
     Columns product = times(matrix, found.x);
     project_all(structure, found, product);
-    const double open = open_residual(found, options.wanted);
+    const double open = open_residual(found, options);
     // The second round settles that nothing is near zero; a residual that falls no more is rounding.
-    if (round > 2 && (open <= 1 || !(open < before / 2))) break;
+    if (open <= 1 || (round > 2 && !(open < before / 2))) break;
     before = open;
   }
   Columns product = times_extended(matrix, found.x, pool);

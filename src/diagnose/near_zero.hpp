@@ -24,14 +24,15 @@ struct NearZero {
 
 struct NearZeroOptions {
   Index columns = 8;  ///< vectors per part; one solve serves all parts, which do not touch
-  double wanted = 0;  ///< pairs with |value| up to here must settle
+  double wanted = 0;  ///< pairs with |value| up to here must settle where a gap behind them is in sight
+  double zero = 0;    ///< and up to here in any case
   std::uint64_t seed = 1;
 };
 
 /// Block inverse iteration with the kept factor of A_s - cI, `motions` kept out, one Rayleigh-Ritz projection
 /// a round and part (Parlett, The Symmetric Eigenvalue Problem, 1998, ch. 14). Ends when the wanted pairs
-/// have settled, or after some rounds; the residuals say which. Cost: a round takes one solve and one
-/// product.
+/// have settled (values that run up without a gap are no cause, whatever they are), or after some rounds; the
+/// residuals say which. Cost: a round takes one solve and one product.
 NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
                         const std::vector<NodeMotion>& motions, const NearZeroOptions& options,
                         ThreadPool& pool);

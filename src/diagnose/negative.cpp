@@ -48,8 +48,8 @@ class Iteration {
 
  private:
   /// The matrix, or what it is on the motions that the constraints leave: P A P.
-  Columns applied(const Columns& x) const {
-    Columns y = times(search_.matrix, x);
+  Columns applied(const Columns& x, Index from = 0) const {
+    Columns y = times(search_.matrix, x, from);
     if (space_ != nullptr) space_->project(y);
     return y;
   }
@@ -137,17 +137,20 @@ class Iteration {
     keep_out(plain);
     precondition(w);
     keep_out(w);
-    Columns span(s_.rows, 4 * width);
+    Columns span(s_.rows, whole_blocks(width + 3 * active));
     for (Index i = 0; i < s_.rows; ++i) {
       double* to = span.row(i);
       std::copy_n(x_.row(i), width, to);
-      std::copy_n(w.row(i), width, to + width);
-      std::copy_n(plain.row(i), width, to + 2 * width);
-      std::copy_n(p_.row(i), width, to + 3 * width);
+      std::copy_n(w.row(i), active, to + width);
+      std::copy_n(plain.row(i), active, to + width + active);
+      std::copy_n(p_.row(i), active, to + width + 2 * active);
     }
     const Columns before = x_;
     const Index used = orthonormalise(span, all_);
-    Columns product = applied(span);
+    // x comes first and is orthonormal already: where nothing of it was dropped its product is known.
+    const Index known = used_ == width ? width : 0;
+    Columns product = applied(span, known);
+    for (Index i = 0; i < s_.rows; ++i) std::copy_n(ax_.row(i), known, product.row(i));
     Ritz ritz = project(span, product, all_, used, false, width);
     x_ = leading(span, width, used);
     ax_ = leading(product, width, used);

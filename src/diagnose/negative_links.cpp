@@ -22,13 +22,16 @@ struct PairBlock {
 
 class LinkFinder {
  public:
-  LinkFinder(const Structure& s, const ShiftedMatrix& matrix) : s_(s), matrix_(matrix) {}
+  /// `value`: x^T A x of each of the vectors, negative.
+  LinkFinder(const Structure& s, const ShiftedMatrix& matrix, const Columns& x,
+             const std::vector<double>& value)
+      : s_(s), matrix_(matrix), x_(x), value_(value) {}
 
   std::vector<NegativeLink> run() {
     each_pair([&](Index i, Index j, Index a, Index b, double value) {
       const DofKind kind = kind_of(i);
       const bool against = kind == kind_of(j) && kind <= DofKind::kRz && value > 0;
-      if (against && a != b) blocks_.try_emplace(std::minmax(a, b));
+      if (against && may_matter(i, j, value)) blocks_.try_emplace(std::minmax(a, b));
     });
     if (blocks_.empty()) return {};
     each_pair([&](Index i, Index j, Index a, Index b, double value) { put(i, j, a, b, value); });
@@ -53,6 +56,16 @@ class LinkFinder {
         if (value != 0) use(i, j, a, b, value / ((*matrix_.scale)[i] * (*matrix_.scale)[j]));
       }
     }
+  }
+
+  /// A link that makes a vector's energy negative holds more than what it lacks; at least a ninth of that in
+  /// one of its three directions.
+  bool may_matter(Index i, Index j, double stiffness) const {
+    for (std::size_t v = 0; v < value_.size(); ++v) {
+      const double apart = (*matrix_.scale)[i] * x_.row(i)[v] - (*matrix_.scale)[j] * x_.row(j)[v];
+      if (9 * stiffness * apart * apart > -value_[v]) return true;
+    }
+    return false;
   }
 
   void put(Index i, Index j, Index a, Index b, double value) {
@@ -112,6 +125,8 @@ class LinkFinder {
 
   const Structure& s_;
   const ShiftedMatrix& matrix_;
+  const Columns& x_;
+  const std::vector<double>& value_;
   std::map<NodePair, PairBlock> blocks_;
 };
 
@@ -124,13 +139,15 @@ double NegativeLink::energy(const ShiftedMatrix& matrix, const Columns& x, Index
 }
 
 std::vector<NegativeLink> find_negative_links(const Structure& s, const ShiftedMatrix& matrix,
-                                              const Columns& x, Index vectors, KeptFactor& factor) {
-  if (!s.named || vectors == 0) return {};
-  std::vector<NegativeLink> links = LinkFinder(s, matrix).run();
+                                              const Columns& x, const std::vector<double>& value,
+                                              KeptFactor& factor) {
+  if (!s.named || value.empty()) return {};
+  std::vector<NegativeLink> links = LinkFinder(s, matrix, x, value).run();
   std::vector<std::pair<double, std::size_t>> order;
   for (std::size_t k = 0; k < links.size(); ++k) {
     double most = 0;
-    for (Index v = 0; v < vectors; ++v) most = std::max(most, links[k].energy(matrix, x, v));
+    for (Index v = 0; v < static_cast<Index>(value.size()); ++v)
+      most = std::max(most, links[k].energy(matrix, x, v));
     order.emplace_back(-most, k);
   }
   std::sort(order.begin(), order.end());

@@ -30,6 +30,7 @@ struct NegativeLink {
 /// ones that hold most energy in `x` (`vectors` columns) are tried with the factor. Pairs with nodal axes are
 /// left out. Cost: two passes over the entries, one solve.
 std::vector<NegativeLink> find_negative_links(const Structure& structure, const ShiftedMatrix& matrix,
-                                              const Columns& x, Index vectors, KeptFactor& factor);
+                                              const Columns& x, const std::vector<double>& value,
+                                              KeptFactor& factor);
 
 }  // namespace stanchion

@@ -2,34 +2,71 @@
 
 #include <algorithm>
 #include <cmath>
+#include <iterator>
+#include <span>
+#include <utility>
 
 namespace stanchion {
 namespace {
 
-constexpr std::size_t kMostLinkedNodes = 40000;
-
-using Neighbours = std::vector<std::vector<Index>>;
-
-Neighbours neighbours_of(const Structure& s, const ShiftedMatrix& matrix, const std::vector<Index>& at_node,
-                         std::size_t nodes) {
-  Neighbours list(nodes);
-  const MatrixFamily& family = *matrix.family;
-  for (Index j = 0; j < family.rows; ++j) {
-    const Index a = at_node[static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(j)])];
-    if (a < 0) continue;
-    for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-      const Index b = at_node[static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(family.row[k])])];
-      if (b < 0 || a == b || matrix.entry(k, family.row[k], j) == 0) continue;
-      list[static_cast<std::size_t>(a)].push_back(b);
-      list[static_cast<std::size_t>(b)].push_back(a);
+/// Who touches whom, by node of the picture, ascending.
+class Neighbours {
+ public:
+  Neighbours(const Structure& s, const ShiftedMatrix& matrix, const std::vector<Index>& at_node,
+             std::size_t nodes)
+      : first_(nodes + 1, 0) {
+    // Pairs of nodes, each found once from either side at most: the entries of one node's columns come
+    // together.
+    std::vector<std::pair<Index, Index>> pairs;
+    std::vector<Index> seen(nodes, -1);
+    const MatrixFamily& family = *matrix.family;
+    for (Index node = 0; node < s.nodes; ++node) {
+      const Index a = at_node[static_cast<std::size_t>(node)];
+      if (a < 0) continue;
+      for (const Index j : s.rows_of(node)) {
+        for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
+          const Index other = s.node_of[static_cast<std::size_t>(family.row[k])];
+          const Index b = at_node[static_cast<std::size_t>(other)];
+          if (b < 0 || a == b || seen[static_cast<std::size_t>(b)] == a ||
+              matrix.entry(k, family.row[k], j) == 0)
+            continue;
+          seen[static_cast<std::size_t>(b)] = a;
+          pairs.emplace_back(a, b);
+        }
+      }
     }
+    for (const auto& [a, b] : pairs) {
+      ++first_[static_cast<std::size_t>(a) + 1];
+      ++first_[static_cast<std::size_t>(b) + 1];
+    }
+    for (std::size_t a = 0; a < nodes; ++a) first_[a + 1] += first_[a];
+    list_.resize(first_.back());
+    std::vector<std::size_t> next(first_.begin(), first_.end() - 1);
+    for (const auto& [a, b] : pairs) {
+      list_[next[static_cast<std::size_t>(a)]++] = b;
+      list_[next[static_cast<std::size_t>(b)]++] = a;
+    }
+    std::size_t kept = 0;
+    for (std::size_t a = 0; a < nodes; ++a) {
+      const auto begin = list_.begin() + static_cast<std::ptrdiff_t>(first_[a]);
+      const auto end = list_.begin() + static_cast<std::ptrdiff_t>(first_[a + 1]);
+      std::sort(begin, end);
+      const auto last = std::unique(begin, end);
+      first_[a] = kept;
+      kept = static_cast<std::size_t>(
+          std::copy(begin, last, list_.begin() + static_cast<std::ptrdiff_t>(kept)) - list_.begin());
+    }
+    first_[nodes] = kept;
   }
-  for (auto& one : list) {
-    std::sort(one.begin(), one.end());
-    one.erase(std::unique(one.begin(), one.end()), one.end());
+
+  std::span<const Index> operator[](std::size_t node) const {
+    return std::span(list_).subspan(first_[node], first_[node + 1] - first_[node]);
   }
-  return list;
-}
+
+ private:
+  std::vector<std::size_t> first_;
+  std::vector<Index> list_;
+};
 
 double squared_distance(const std::array<double, 3>& a, const std::array<double, 3>& b) {
   double sum = 0;
@@ -79,9 +116,8 @@ ModelPicture make_picture(const Structure& s, const ShiftedMatrix& matrix) {
     picture.place.push_back(s.place[a]);
     picture.component.push_back(s.part_of[a]);
   }
-  if (picture.node.size() > kMostLinkedNodes) return result;
-  const Neighbours list = neighbours_of(s, matrix, result.at_node, picture.node.size());
-  for (std::size_t a = 0; a < list.size(); ++a) {
+  const Neighbours list(s, matrix, result.at_node, picture.node.size());
+  for (std::size_t a = 0; a < picture.node.size(); ++a) {
     for (const Index b : list[a]) {
       if (b <= static_cast<Index>(a) || is_diagonal(picture, list, static_cast<Index>(a), b)) continue;
       picture.links.emplace_back(static_cast<Index>(a), b);

@@ -15,8 +15,7 @@ struct ModelPicture {
 };
 
 /// Every node with a place. Links are pairs with stiffness between them, without the diagonals of meshes (two
-/// nodes that lie across from each other among common neighbours); left out in models of more than some ten
-/// thousand nodes.
+/// nodes that lie across from each other among common neighbours). A drawing thins them out (reduce_model).
 ModelPicture make_picture(const Structure& structure, const ShiftedMatrix& matrix);
 
 }  // namespace stanchion

@@ -50,10 +50,10 @@ void subtract_along(const double* q, Index basis, double* b, Index columns, Inde
 
 }  // namespace
 
-Columns times(const ShiftedMatrix& matrix, const Columns& x) {
+Columns times(const ShiftedMatrix& matrix, const Columns& x, Index from) {
   const MatrixFamily& family = *matrix.family;
   Columns y(x.rows, x.count);
-  for (Index first = 0; first < x.count; first += kBlockVectors) {  // eight at a time stay in registers
+  for (Index first = from; first < x.count; first += kBlockVectors) {  // eight at a time stay in registers
     for (Index j = 0; j < family.rows; ++j) {
       const double* x_j = x.row(j) + first;
       double* y_j = y.row(j) + first;

@@ -11,7 +11,8 @@
 namespace stanchion {
 
 /// y = A x in double precision, for shapes and iterations; what is judged goes through extended_product.
-Columns times(const ShiftedMatrix& matrix, const Columns& x);
+/// Columns before `from`, a multiple of eight, are left zero.
+Columns times(const ShiftedMatrix& matrix, const Columns& x, Index from = 0);
 
 /// y = A x accumulated in double-double and rounded once.
 Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool& pool);

@@ -4,6 +4,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <optional>
 
 #include "report/cause_words.hpp"
 #include "report/markup.hpp"
@@ -14,6 +15,7 @@ namespace stanchion {
 namespace {
 
 constexpr std::size_t kNodesShown = 8, kMarks = 2, kPartsShown = 12;
+constexpr std::size_t kMostLinks = 16000, kCoarseNodes = 4000;  ///< that an overview shows
 
 std::string tag(const char* name, const std::string& text) {
   return fmt::format("<{0}>{1}</{0}>", name, escaped(text));
@@ -43,7 +45,7 @@ std::string ranked_table(const Direction& direction) {
         "<tr><td>{}</td><td>{}</td><td class=\"bar\"><i style=\"width:{:.1f}%\"></i></td><td "
         "class=\"right\">{}</td></tr>\n",
         d.node ? std::to_string(*d.node) : "-", escaped(d.dof), most > 0 ? 100 * d.share / most : 0,
-        percent(d.share));
+        escaped(percent(d.share)));
   }
   html += "</table>";
   const Offset rest =
@@ -68,10 +70,14 @@ std::vector<Mark> marks_of(const LocateOutcome& located, const Direction& direct
   return marks;
 }
 
-std::string figure_of(const LocateOutcome& located, const Direction& direction) {
+std::string figure_of(const LocateOutcome& located, const Direction& direction,
+                      const std::optional<ReducedModel>& reduced) {
   const auto marks = marks_of(located, direction);
   if (located.picture.place.empty() || (marks.empty() && direction.shape.empty())) return "";
-  const ModelDrawing drawing = draw_model(located.picture, direction.shape, marks);
+  std::optional<CoarseModel> coarse;
+  if (reduced) coarse = coarse_model(located, *reduced, direction.shape, marks);
+  const ModelDrawing drawing =
+      draw_model(located.picture, direction.shape, marks, coarse ? &*coarse : nullptr);
   std::string caption =
       direction.shape.empty()
           ? "Rings mark the nodes ranked first."
@@ -82,7 +88,11 @@ std::string figure_of(const LocateOutcome& located, const Direction& direction) 
                 100 * drawing.exaggeration);
   const auto& t = drawing.view.toward;
   caption += fmt::format(" Seen from ({:.2f}, {:.2f}, {:.2f}).", t[0], t[1], t[2]);
-  if (drawing.left_out > 0 && located.picture.links.empty())
+  if (coarse) {
+    caption += fmt::format(" Of {} nodes {} stand for the others, with the links between those.",
+                           grouped(static_cast<Offset>(located.picture.node.size())),
+                           grouped(static_cast<Offset>(coarse->picture.node.size())));
+  } else if (drawing.left_out > 0 && located.picture.links.empty())
     caption += fmt::format(" Of {} nodes one in every few pixels is drawn.",
                            grouped(static_cast<Offset>(located.picture.node.size())));
   if (!drawing.close_up.empty())
@@ -106,14 +116,15 @@ std::string sign_mark(const Direction& direction) {
       path, line ? "none" : "currentColor");
 }
 
-std::string cause_to_html(const LocateOutcome& located, const Direction& direction, std::size_t number) {
+std::string cause_to_html(const LocateOutcome& located, const Direction& direction, std::size_t number,
+                          const std::optional<ReducedModel>& reduced) {
   std::string html = fmt::format(
       "<article class=\"cause\"><header><span class=\"{}\">{}</span><h3>{}. {}</h3><span "
       "class=\"tally\">{}</span></header>\n",
       direction.cause == Cause::kUnresolved ? "open" : "heed", sign_mark(direction), number,
       title_of(direction.cause), how_many(direction));
   html += fmt::format("<p class=\"why\">{}</p>\n", escaped(direction.explanation));
-  html += figure_of(located, direction);
+  html += figure_of(located, direction, reduced);
   std::string facts;
   const auto fact = [&facts](const char* label, const std::string& text) {
     facts += tag("dt", label) + tag("dd", text);
@@ -229,8 +240,11 @@ std::string blocks_to_html(const std::vector<Page::Block>& blocks, std::size_t b
 
 std::string causes_to_html(const LocateOutcome& located) {
   std::string html;
+  std::optional<ReducedModel> reduced;
+  if (located.picture.links.size() > kMostLinks && !located.directions.empty())
+    reduced = reduce_model(located, kCoarseNodes, kMostLinks);
   for (std::size_t k = 0; k < located.directions.size(); ++k)
-    html += cause_to_html(located, located.directions[k], k + 1);
+    html += cause_to_html(located, located.directions[k], k + 1, reduced);
   return html;
 }
 

@@ -113,13 +113,20 @@ class Drawer {
          const std::vector<Mark>& marks)
       : picture_(picture), shape_(shape), marks_(marks) {}
 
-  ModelDrawing run() {
+  ModelDrawing run(const CoarseModel* coarse) {
     ModelDrawing drawing;
     if (picture_.place.empty()) return drawing;
     drawing.view = view_ = best_view(picture_, shape_);
     measure();
     drawing.exaggeration = kMotion;
-    drawing.overview = overview(drawing);
+    if (coarse == nullptr) {
+      drawing.overview = overview(drawing);
+    } else {
+      Drawer whole(coarse->picture, coarse->shape, coarse->marks);
+      whole.view_ = view_;
+      whole.size_ = size_;
+      drawing.overview = whole.overview(drawing);
+    }
     if (!marks_.empty()) drawing.close_up = close_up();
     return drawing;
   }
@@ -430,9 +437,28 @@ ViewAxes best_view(const Picture& picture, const std::vector<std::array<float, 3
   return view;
 }
 
+CoarseModel coarse_model(const LocateOutcome& located, const ReducedModel& reduced,
+                         const std::vector<std::array<float, 3>>& shape, const std::vector<Mark>& marks) {
+  CoarseModel coarse;
+  const Picture& all = located.picture;
+  for (const std::size_t node : reduced.kept) {
+    coarse.picture.node.push_back(all.node[node]);
+    coarse.picture.place.push_back(all.place[node]);
+    coarse.picture.component.push_back(all.component[node]);
+    if (!shape.empty()) coarse.shape.push_back(shape[node]);
+  }
+  coarse.picture.links = reduced.links;
+  for (const Mark& mark : marks) {
+    const auto at = std::lower_bound(reduced.kept.begin(), reduced.kept.end(), mark.node);
+    if (at == reduced.kept.end() || *at != mark.node) continue;
+    coarse.marks.push_back({static_cast<std::size_t>(at - reduced.kept.begin()), mark.text});
+  }
+  return coarse;
+}
+
 ModelDrawing draw_model(const Picture& picture, const std::vector<std::array<float, 3>>& shape,
-                        const std::vector<Mark>& marks) {
-  return Drawer(picture, shape, marks).run();
+                        const std::vector<Mark>& marks, const CoarseModel* coarse) {
+  return Drawer(picture, shape, marks).run(coarse);
 }
 
 std::string draw_field(const Picture& picture, const std::vector<float>& value, double top) {

@@ -5,6 +5,7 @@
 #include <string>
 #include <vector>
 
+#include "report/model_reduction.hpp"
 #include "stanchion/located.hpp"
 
 namespace stanchion {
@@ -31,10 +32,23 @@ struct ModelDrawing {
   std::size_t drawn = 0, left_out = 0;  ///< nodes of the cloud that were drawn and thinned out
 };
 
+/// A model thinned to what a page shows (reduce_model), for the overview of a large one.
+struct CoarseModel {
+  Picture picture;
+  std::vector<std::array<float, 3>> shape;
+  std::vector<Mark> marks;
+};
+
+/// The nodes and links that stand for the whole, with a motion and marks on them; marks on nodes that were
+/// left out are left out, too.
+CoarseModel coarse_model(const LocateOutcome& located, const ReducedModel& reduced,
+                         const std::vector<std::array<float, 3>>& shape, const std::vector<Mark>& marks);
+
 /// Overview of the whole model with the motion in a second colour, and a close-up on the first mark. Colours
-/// come from the page's style (classes v-...). A million nodes are thinned to one a few pixels.
+/// come from the page's style (classes v-...). A million nodes are thinned to one a few pixels; with `coarse`
+/// the overview shows that instead, the close-up the model itself.
 ModelDrawing draw_model(const Picture& picture, const std::vector<std::array<float, 3>>& shape,
-                        const std::vector<Mark>& marks);
+                        const std::vector<Mark>& marks, const CoarseModel* coarse = nullptr);
 
 /// The cloud coloured by a value of each node (classes v-0 to v-5 for six steps from 0 to `top`); empty
 /// without nodes.

@@ -121,7 +121,7 @@ std::string to_view_json(const LocateOutcome& located) {
   if (accuracy && !picture.node.empty() && accuracy->by_node.size() == picture.node.size()) {
     json.list("digits", model.kept, [&](std::string& text, std::size_t i) {
       const float digits = accuracy->by_node[i];
-      text += std::isfinite(digits) ? fmt::format("{:.3g}", digits) : "null";
+      text += std::isfinite(digits) && digits >= 0 ? fmt::format("{:.3g}", digits) : "null";
     });
   } else {
     json.member("digits", nullptr);

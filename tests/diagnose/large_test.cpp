@@ -2,7 +2,7 @@
 // mode.
 #include <gtest/gtest.h>
 
-#include "diagnose/planted.hpp"
+#include "diagnose/combination.hpp"
 
 namespace stanchion {
 namespace {
@@ -38,6 +38,15 @@ TEST_P(Large, DefectIsFound) {
   RecordProperty("seconds_locating", std::to_string(outcome.located->seconds));
   RecordProperty("seconds_factoring", std::to_string(outcome.timings.factor));
   RecordProperty("factorizations", outcome.work.factorizations);
+}
+
+/// Five parts, together up to 200,000 equations.
+TEST(LargeCombined, EveryDefectIsNamedApartWithItsNodes) {
+  for (const char* name : {"solid", "plate", "frame", "lattice"}) {
+    const Combination made = combination_of(name, 49000, 7);
+    ModelFiles files;
+    expect_planted(made, answer(run_locate(made.model.request(files), {})));
+  }
 }
 
 INSTANTIATE_TEST_SUITE_P(

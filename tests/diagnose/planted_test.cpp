@@ -1,6 +1,7 @@
 // Planted defects: kind, number and nodes must come out as they were put in.
 #include <gtest/gtest.h>
 
+#include "diagnose/combination.hpp"
 #include "diagnose/planted.hpp"
 #include "model/exit_code.hpp"
 
@@ -240,6 +241,23 @@ TEST(PlantedRotations, WithoutStiffnessAreOneCauseHoweverManyNodes) {
     EXPECT_EQ(direction.moving_nodes, count) << angle;
   }
 }
+
+class Combined : public testing::TestWithParam<Size> {};
+
+TEST_P(Combined, EveryDefectIsNamedApartWithItsNodes) {
+  for (const unsigned seed : {1U, 2U}) {
+    const Combination made = combination_of(GetParam().name, GetParam().unknowns, seed);
+    expect_planted(made, ask(made.model));
+  }
+}
+
+INSTANTIATE_TEST_SUITE_P(Specimens, Combined,
+                         testing::Values(Size{"solid", 500}, Size{"solid", 4000}, Size{"plate", 600},
+                                         Size{"plate", 6000}, Size{"frame", 600}, Size{"frame", 4000},
+                                         Size{"lattice", 900}),
+                         [](const auto& given) {
+                           return given.param.name + std::string("_") + std::to_string(given.param.unknowns);
+                         });
 
 /// All at once, in one model of four parts: hinge, loose part with its seam, soft spring, rotations without
 /// stiffness, a negative spring, an unattached dof.

@@ -3,6 +3,9 @@
 import csv
 import html.parser
 import importlib
+import shutil
+import struct
+import subprocess
 import unittest
 import xml.etree.ElementTree
 
@@ -44,7 +47,24 @@ def outline(path):
     return page
 
 
+def numpy_single(text):
+    """The single precision number that `text` stands for, as a reader of Float32 arrays gives it."""
+    return struct.unpack("f", struct.pack("f", float(text)))[0]
+
+
 class ReportsTest(ProgramTest):
+    def validate(self, page):
+        """By an HTML5 parser that tolerates no error, and by HTML Tidy, where they are there."""
+        try:
+            html5lib = importlib.import_module("html5lib")  # python3-html5lib
+            html5lib.HTMLParser(strict=True).parse(page.read_bytes())
+        except ImportError:
+            pass
+        if shutil.which("tidy"):
+            run = subprocess.run(["tidy", "-quiet", "-errors", "--drop-empty-elements", "no", str(page)],
+                                 capture_output=True, text=True, check=False)
+            self.assertEqual((run.returncode, run.stderr.strip()), (0, ""))
+
     def located(self, name="frame", fault="loose-part", code=1):
         folder = self.folder / "model"
         run = self.run_program("specimen", name, "--unknowns", 900, "--fault", fault, "--out", folder, "--quiet")
@@ -57,6 +77,7 @@ class ReportsTest(ProgramTest):
 
     def test_html(self):
         document, files = self.located()
+        self.validate(files["html"])
         page = outline(files["html"])
         text = " ".join(page.text)
         for direction in document["directions"]:
@@ -109,12 +130,28 @@ class ReportsTest(ProgramTest):
         self.assertLess(max(map(int, arrays["connectivity"])), points)
         moving = sum(any(abs(float(v)) > 0 for v in arrays["motion_1"][3 * k:3 * k + 3]) for k in range(points))
         self.assertEqual(moving, document["directions"][0]["moving_nodes"])
+        self.read_with_meshio(files["vtu"], arrays)
+        self.read_with_vtk(files["vtu"], points, cells, arrays)
+
+    def read_with_meshio(self, path, arrays):
         try:
-            vtk = importlib.import_module("vtk")  # python3-vtk9
+            meshio = importlib.import_module("meshio")  # python3-meshio
+        except ImportError:
+            return
+        grid = meshio.read(path)
+        self.assertEqual([str(number) for number in grid.point_data["node"]], arrays["node"])
+        self.assertEqual(grid.point_data["motion_1"].shape, (len(grid.points), 3))
+        self.assertEqual(grid.point_data["motion_1"].ravel().tolist(), [float(numpy_single(v)) for v in arrays["motion_1"]])
+        self.assertEqual(sum(len(block.data) for block in grid.cells), len(arrays["types"]))
+        self.assertEqual({block.type for block in grid.cells} - {"line", "vertex"}, set())
+
+    def read_with_vtk(self, path, points, cells, arrays):
+        try:
+            vtk = importlib.import_module("vtk")  # python3-vtk9: some hundred megabytes with what it needs
         except ImportError:
             return
         reader = vtk.vtkXMLUnstructuredGridReader()
-        reader.SetFileName(str(files["vtu"]))
+        reader.SetFileName(str(path))
         reader.Update()
         grid = reader.GetOutput()
         self.assertEqual((grid.GetNumberOfPoints(), grid.GetNumberOfCells()), (points, cells))
@@ -143,6 +180,7 @@ class ReportsTest(ProgramTest):
         for arguments in (["check"], ["forecast"], ["count", "--geometric", folder / "G.mtx", "--at", "1,2,-1"]):
             page, table, suite = (self.folder / f"{arguments[0]}.{kind}" for kind in ("html", "csv", "xml"))
             self.expect(0, arguments[0], folder / "K.mtx", *arguments[1:], "--html", page, "--csv", table, "--junit", suite)
+            self.validate(page)
             self.assertIn("Not checked", " ".join(outline(page).text))
             xml.etree.ElementTree.parse(suite)
             self.assertTrue(table.read_text(encoding="utf-8").startswith("table,item,quantity,value\n"))
