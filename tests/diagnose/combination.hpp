@@ -24,8 +24,9 @@ struct Combination {
 
 inline bool knows_fault(const std::string& name, const std::string& fault) {
   for (const SpecimenEntry& entry : specimen_list()) {
-    if (name == entry.name)
-      return (" " + std::string(entry.faults) + " ").find(" " + fault + " ") != std::string::npos;
+    if (name != entry.name) continue;
+    std::istringstream faults(entry.faults);
+    return std::find(std::istream_iterator<std::string>(faults), {}, fault) != std::istream_iterator<std::string>();
   }
   return false;
 }
