@@ -2,6 +2,13 @@
 // permuted.
 #pragma once
 
+#include <algorithm>
+#include <iterator>
+#include <map>
+#include <sstream>
+#include <string>
+#include <vector>
+
 #include "diagnose/planted.hpp"
 
 namespace stanchion::test {
