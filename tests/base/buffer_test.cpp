@@ -2,6 +2,7 @@
 
 #include <gtest/gtest.h>
 
+#include <limits>
 #include <new>
 #include <numeric>
 
@@ -64,7 +65,7 @@ TEST(Buffer, SpansCoverEverything) {
 }
 
 TEST(Buffer, TooLargeThrows) {
-  EXPECT_THROW(Buffer<double>(Offset{1} << 60), std::bad_alloc);
+  EXPECT_THROW(Buffer<double>{Offset{1} << 60}, std::bad_alloc);
 }
 
 TEST(Buffer, LargeOnesHoldEveryElementAndMove) {
@@ -85,8 +86,9 @@ TEST(Buffer, LargeOnesHoldEveryElementAndMove) {
 }
 
 TEST(Buffer, SizesBeyondAllMemoryTooLargeThrows) {
-  EXPECT_THROW(Buffer<double>(Offset{1} << 60), std::bad_alloc);
-  EXPECT_THROW(Buffer<double>(std::numeric_limits<Offset>::max()), std::bad_alloc);
+  EXPECT_THROW(Buffer<double>{Offset{1} << 60}, std::bad_alloc);
+  constexpr Offset kMost = std::numeric_limits<Offset>::max();
+  EXPECT_THROW(Buffer<double>{kMost}, std::bad_alloc);
 }
 
 }  // namespace
