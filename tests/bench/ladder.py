@@ -48,9 +48,11 @@ QUICK = [
 FULL = [
     definite("solid", 3_000), definite("solid", 30_000), definite("solid", 100_000), definite("solid", 200_000),
     definite("plate", 3_000), definite("plate", 50_000), definite("plate", 200_000), definite("plate", 600_000),
+    definite("plate-coupled", 200_000), definite("plate-coupled", 600_000),
     definite("frame", 3_000), definite("frame", 20_000), definite("frame", 100_000),
     count("solid", 30_000, "mass", 3e6), count("solid", 100_000, "mass", 3e6),
     count("plate", 50_000, "geometric", 3.0), count("plate", 200_000, "geometric", 3.0),
+    count("plate-coupled", 200_000, "geometric", 3.0),
     count("frame", 20_000, "geometric", 20.0), count("frame", 100_000, "geometric", 20.0),
     count("laplace", 30_000, "stiffness", 2.01), count("column", 300_000, "geometric", 30.0),
     count("saddle", 30_000, "stiffness", 0.0), count("saddle", 100_000, "stiffness", 0.0),
