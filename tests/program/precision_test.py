@@ -1,5 +1,6 @@
 """What the numbers of a file can tell: --precision, --digits, --risk and --seed."""
 
+import os
 import unittest
 
 from program import ProgramTest, chain, diagonal
@@ -47,7 +48,8 @@ class PrecisionTest(ProgramTest):
             forecast[precision], peak[precision] = memory["forecast"], memory["peak"]
         # On two threads this model's stack takes some 37 MB in doubles; what the process holds besides differs between builds.
         self.assertGreater(forecast["extended"] - forecast["double"], 25e6)
-        self.assertLessEqual(peak["extended"], 1.05 * forecast["extended"])
+        if not os.environ.get("STANCHION_SANITIZED"):  # a sanitizer holds memory of its own, which no forecast counts
+            self.assertLessEqual(peak["extended"], 1.05 * forecast["extended"])
         between = (forecast["double"] + forecast["extended"]) // 2
         limits = ("--threads", 2, "--memory-cap", between)
         self.expect(0, "check", "solid/K.mtx", *limits)
