@@ -15,6 +15,7 @@
 #include <limits>
 #include <utility>
 
+#include "base/file_handle.hpp"
 #include "jobs/progress_pipe.hpp"
 #include "jobs/strict_json.hpp"
 #include "model/exit_code.hpp"
@@ -40,43 +41,24 @@ constexpr bool kLimitsData = true;
 constexpr bool kLimitsData = true;
 #endif
 
-/// A handle that is closed when it goes.
-class Handle {
- public:
-  explicit Handle(int handle = -1) : handle_(handle) {}
-  Handle(Handle&& other) noexcept : handle_(std::exchange(other.handle_, -1)) {}
-  Handle& operator=(Handle&& other) noexcept {
-    std::swap(handle_, other.handle_);
-    return *this;
-  }
-  ~Handle() {
-    if (handle_ >= 0) ::close(handle_);
-  }
-  int get() const { return handle_; }
-  int release() { return std::exchange(handle_, -1); }
-
-  /// The same file under a number that the child will not be given for something else.
-  bool move_up() {
-    const int moved = ::fcntl(handle_, F_DUPFD_CLOEXEC, kFirstSpareHandle);
-    if (moved < 0) return false;
-    ::close(std::exchange(handle_, moved));
-    return true;
-  }
-
- private:
-  int handle_;
-};
+/// Gives the same file a number that the child will not be given for something else.
+bool move_up(FileHandle& handle) {
+  FileHandle moved(::fcntl(handle.get(), F_DUPFD_CLOEXEC, kFirstSpareHandle));
+  if (!moved) return false;
+  handle = std::move(moved);  // the old number is closed
+  return true;
+}
 
 struct Pipe {
-  Handle read, write;
+  FileHandle read, write;
 };
 
 bool open_pipe(Pipe& pipe) {
   int ends[2];
   if (::pipe2(ends, O_CLOEXEC) != 0) return false;
-  pipe.read = Handle(ends[0]);
-  pipe.write = Handle(ends[1]);
-  return pipe.read.move_up() && pipe.write.move_up();
+  pipe.read = FileHandle(ends[0]);
+  pipe.write = FileHandle(ends[1]);
+  return move_up(pipe.read) && move_up(pipe.write);
 }
 
 Status cannot_start(const std::string& what) {
@@ -178,26 +160,20 @@ Result<ChildProcess> ChildProcess::start(const ChildPlan& plan) {
   environment.push_back(one_thread.data());
   environment.push_back(nullptr);
 
-  Handle input(::open("/dev/null", O_RDONLY | O_CLOEXEC));
+  FileHandle input(::open("/dev/null", O_RDONLY | O_CLOEXEC));
   const std::string log_path = plan.log.empty() ? "/dev/null" : plan.log;
-  Handle log(::open(log_path.c_str(), O_WRONLY | O_CREAT | O_APPEND | O_CLOEXEC, 0666));
+  FileHandle log(::open(log_path.c_str(), O_WRONLY | O_CREAT | O_APPEND | O_CLOEXEC, 0666));
   if (log.get() < 0) return cannot_start("its log " + log_path);
   Pipe progress, failure;
-  if (input.get() < 0 || !input.move_up() || !log.move_up() || !open_pipe(progress) || !open_pipe(failure)) {
+  if (input.get() < 0 || !move_up(input) || !move_up(log) || !open_pipe(progress) || !open_pipe(failure)) {
     return cannot_start("its handles");
   }
-  Launch launch{plan.program.c_str(),
-                plan.working_folder.empty() ? nullptr : plan.working_folder.c_str(),
-                pointers.data(),
-                environment.data(),
-                input.get(),
-                log.get(),
-                progress.write.get(),
-                failure.write.get(),
-                RLIM_INFINITY,
-                RLIM_INFINITY,
-                plan.niceness,
-                ::getpid()};
+  Launch launch{plan.program.c_str(), plan.working_folder.empty() ? nullptr : plan.working_folder.c_str(),
+                pointers.data(),      environment.data(),
+                input.get(),          log.get(),
+                progress.write.get(), failure.write.get(),
+                RLIM_INFINITY,        RLIM_INFINITY,
+                plan.niceness,        ::getpid()};
   if (plan.memory_bytes && kLimitsData) {
     launch.memory = static_cast<rlim_t>(memory_limit_of(*plan.memory_bytes, plan.threads));
   }
@@ -215,8 +191,8 @@ Result<ChildProcess> ChildProcess::start(const ChildPlan& plan) {
   child.pipe_ = progress.read.release();
   child.memory_bytes_ = plan.memory_bytes;
   child.cpu_seconds_ = plan.cpu_seconds;
-  failure.write = Handle();
-  progress.write = Handle();
+  failure.write = FileHandle();
+  progress.write = FileHandle();
   int error = 0;
   ssize_t count = 0;
   do {

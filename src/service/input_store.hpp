@@ -12,7 +12,7 @@
 #include <vector>
 
 #include "base/digest.hpp"
-#include "service/file_handle.hpp"
+#include "base/file_handle.hpp"
 #include "service/job_journal.hpp"
 #include "stanchion/status.hpp"
 

@@ -5,8 +5,8 @@
 #include <string>
 #include <vector>
 
+#include "base/file_handle.hpp"
 #include "jobs/job_request.hpp"
-#include "service/file_handle.hpp"
 #include "service/input_store.hpp"
 #include "service/roots.hpp"
 

@@ -6,7 +6,7 @@
 #include <string>
 #include <vector>
 
-#include "service/file_handle.hpp"
+#include "base/file_handle.hpp"
 #include "stanchion/status.hpp"
 
 namespace stanchion::service {

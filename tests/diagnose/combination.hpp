@@ -33,7 +33,8 @@ inline bool knows_fault(const std::string& name, const std::string& fault) {
   for (const SpecimenEntry& entry : specimen_list()) {
     if (name != entry.name) continue;
     std::istringstream faults(entry.faults);
-    return std::find(std::istream_iterator<std::string>(faults), {}, fault) != std::istream_iterator<std::string>();
+    return std::find(std::istream_iterator<std::string>(faults), {}, fault) !=
+           std::istream_iterator<std::string>();
   }
   return false;
 }

@@ -5,7 +5,7 @@
 
 #include <utility>
 
-namespace stanchion::service {
+namespace stanchion {
 
 class FileHandle {
  public:
@@ -27,4 +27,4 @@ class FileHandle {
   int handle_;
 };
 
-}  // namespace stanchion::service
+}  // namespace stanchion
