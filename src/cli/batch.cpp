@@ -49,7 +49,7 @@ class BatchCommand : public Command {
   Status open_summaries();
 
   std::optional<std::string> jobs_, results_, shard_, memory_cap_, store_, reports_, certificates_, logs_,
-      json_, junit_, log_;
+      json_, junit_, log_, log_format_;
   std::vector<std::string> merge_;
   std::optional<std::int64_t> threads_, cpu_limit_;
   bool resume_ = false, retry_ = false, quiet_ = false;
@@ -73,6 +73,9 @@ void BatchCommand::declare(Arguments& arguments) {
   arguments.text("--logs", logs_, "DIR", "what each job's process wrote, ID.log");
   arguments.flag("--quiet", quiet_, "no text on standard output, no progress line");
   arguments.text("--log", log_, "FILE", "what happens to each job; - for standard error");
+  arguments.text("--log-format", log_format_, "text|json",
+                 "json: each line an object, with the job's id (text)");
+  arguments.last().use = OptionUse::kRunner;
   arguments.group("Resources");
   arguments.text("--shard", shard_, "i/n", "only every n-th job, beginning with the i-th: for job arrays");
   arguments.text("--memory-cap", memory_cap_, "SIZE",
@@ -254,7 +257,12 @@ Result<int> BatchCommand::run_jobs(const std::vector<const ListedJob*>& jobs, co
                              "go on from them with --resume, or name another file with --results");
   }
   if (Status status = open_summaries(); !status.ok()) return status;
-  const auto log = LogFile::open(log_);
+  LogOptions logging;
+  logging.path = log_;
+  const auto json = wants_json_log(log_format_);
+  if (!json.ok()) return json.status();
+  logging.json = *json;
+  const auto log = LogFile::open(logging);
   if (!log.ok()) return log.status();
 
   const Stopwatch watch;
@@ -273,7 +281,7 @@ Result<int> BatchCommand::run_jobs(const std::vector<const ListedJob*>& jobs, co
   BatchContext context;
   context.cancel = &token;
   context.progress = [&line](const BatchProgress& progress) { line.update("jobs", progress.fraction); };
-  context.log = [&log](const std::string& id, const std::string& text) { log->line(id + ": " + text); };
+  context.log = [&log](const std::string& id, const std::string& text) { log->record({"job", text, id}); };
   std::vector<JobResult> recorded;
   const Status status = run_batch(left, call.rules(), *options, context, files, *file, recorded);
   line.erase();

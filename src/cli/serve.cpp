@@ -14,6 +14,7 @@
 #include "cli/log_file.hpp"
 #include "cli/terminal.hpp"
 #include "model/byte_size.hpp"
+#include "model/version.hpp"
 #include "service/service.hpp"
 
 namespace stanchion::cli {
@@ -62,16 +63,30 @@ class ServeCommand : public Command {
   Result<int> run(const Call& call) override;
 
  private:
+  void declare_log(Arguments& arguments);
   void declare_access(Arguments& arguments);
   void declare_limits(Arguments& arguments);
   Result<service::ServiceOptions> options() const;
+  Result<LogOptions> log_options() const;
 
-  std::optional<std::string> host_, store_, token_file_, tls_certificate_, tls_key_, page_, log_;
+  std::optional<std::string> host_, store_, token_file_, tls_certificate_, tls_key_, page_, log_, log_format_,
+      log_size_;
   std::optional<std::string> memory_cap_, store_size_, upload_size_;
-  std::optional<std::int64_t> port_, processors_, cpu_cap_, queue_, keep_jobs_, connections_, grace_, rate_;
+  std::optional<std::int64_t> port_, processors_, cpu_cap_, queue_, keep_jobs_, connections_, grace_, rate_,
+      heartbeat_, log_files_;
   std::vector<std::string> roots_, public_names_;
   bool behind_proxy_ = false;
 };
+
+void ServeCommand::declare_log(Arguments& arguments) {
+  arguments.group("Log", true);
+  arguments.text("--log", log_, "FILE", "one line an event; - for standard error");
+  arguments.text("--log-format", log_format_, "text|json",
+                 "json: each line an object, with the job's id (text)");
+  arguments.text("--log-size", log_size_, "SIZE",
+                 "then the file becomes NAME.1 and a new one begins (64M); 0: never");
+  arguments.whole("--log-files", log_files_, "N", "older files that are kept (8)");
+}
 
 void ServeCommand::declare_access(Arguments& arguments) {
   arguments.group("Who may ask, and from where");
@@ -79,8 +94,12 @@ void ServeCommand::declare_access(Arguments& arguments) {
   arguments.whole("--port", port_, "N", "port (8420); 0 takes a free one");
   arguments.text("--token-file", token_file_, "FILE",
                  "who may ask: a scope (read, submit, admin) and a token a line");
+  // No files of a question: they are configured once, like the address.
+  arguments.last().use = OptionUse::kRunner;
   arguments.text("--tls-cert", tls_certificate_, "FILE", "certificate chain, PEM");
+  arguments.last().use = OptionUse::kRunner;
   arguments.text("--tls-key", tls_key_, "FILE", "its key, PEM");
+  arguments.last().use = OptionUse::kRunner;
   arguments.flag("--behind-proxy", behind_proxy_, "a proxy in front encrypts");
   arguments.texts("--public-name", public_names_, "NAME", "host name by which the service is reached");
 }
@@ -96,6 +115,8 @@ void ServeCommand::declare_limits(Arguments& arguments) {
   arguments.whole("--keep-jobs", keep_jobs_, "N", "ended jobs that are kept (100000)");
   arguments.whole("--connections", connections_, "N", "open at a time (512)");
   arguments.whole("--rate", rate_, "N", "requests a second from one address (2000)");
+  arguments.whole("--heartbeat", heartbeat_, "SECONDS",
+                  "a silent stream of events says something so often (15)");
   arguments.whole("--grace", grace_, "SECONDS", "how long jobs may go on when the service is ended (10)");
 }
 
@@ -105,7 +126,7 @@ void ServeCommand::declare(Arguments& arguments) {
                  "jobs and inputs (STANCHION_HOME, or ~/.local/share/stanchion)");
   arguments.texts("--root", roots_, "NAME=FOLDER", "a folder from which jobs may read files");
   arguments.text("--page", page_, "FOLDER", "the page's files, instead of those installed");
-  arguments.text("--log", log_, "FILE", "one line an event; - for standard error");
+  declare_log(arguments);
   declare_access(arguments);
   declare_limits(arguments);
   arguments.closing(
@@ -150,7 +171,7 @@ Result<service::ServiceOptions> ServeCommand::options() const {
   options.description = data_path("openapi.json");
   options.share = {usual_memory(), static_cast<int>(std::max(1U, std::thread::hardware_concurrency())),
                    86'400};
-  std::int64_t grace = 10;
+  std::int64_t grace = 10, heartbeat = 15;
   constexpr std::int64_t kMany = 1'000'000'000;
   for (const Status& status :
        {take(port_, "--port", 0, 65'535, options.address.port),
@@ -160,15 +181,36 @@ Result<service::ServiceOptions> ServeCommand::options() const {
         take(keep_jobs_, "--keep-jobs", 0, kMany, options.kept_jobs),
         take(connections_, "--connections", 1, 20'000, options.http.connections),
         take(rate_, "--rate", 1, kMany, options.requests_per_second),
-        take(grace_, "--grace", 0, 86'400, grace), take_size(memory_cap_, options.share.memory_bytes),
-        take_size(store_size_, options.store_bytes), take_size(upload_size_, options.upload_bytes)}) {
+        take(grace_, "--grace", 0, 86'400, grace), take(heartbeat_, "--heartbeat", 1, 3600, heartbeat),
+        take_size(memory_cap_, options.share.memory_bytes), take_size(store_size_, options.store_bytes),
+        take_size(upload_size_, options.upload_bytes)}) {
     if (!status.ok()) return status;
   }
   options.grace = std::chrono::seconds(grace);
+  options.heartbeat = std::chrono::seconds(heartbeat);
   if (options.store.empty()) {
     return Status::bad_usage("missing-argument", "there is no place for the jobs", "--store",
                              "give --store FOLDER");
   }
+  return options;
+}
+
+Result<LogOptions> ServeCommand::log_options() const {
+  LogOptions options;
+  options.path = log_;
+  options.append = true;
+  options.rotate_bytes = Offset{64} << 20;
+  options.kept_files = 8;
+  const auto json = wants_json_log(log_format_);
+  if (!json.ok()) return json.status();
+  options.json = *json;
+  if (log_size_ == "0") {
+    options.rotate_bytes = 0;
+  } else if (Status status = take_size(log_size_, options.rotate_bytes); !status.ok()) {
+    return status;
+  }
+  if (Status status = take(log_files_, "--log-files", 0, 100'000, options.kept_files); !status.ok())
+    return status;
   return options;
 }
 
@@ -177,10 +219,12 @@ Result<int> ServeCommand::run(const Call& call) {
   const InterruptGuard guard(token);
   auto made = options();
   if (!made.ok()) return made.status();
-  const auto log = LogFile::open(log_);
+  const auto wanted = log_options();
+  if (!wanted.ok()) return wanted.status();
+  const auto log = LogFile::open(*wanted);
   if (!log.ok()) return log.status();
   made->rules = call.rules();
-  made->log = [&log](const std::string& text) { log->line(text); };
+  made->log = [&log](const LogRecord& record) { log->record(record); };
   const std::string scheme = made->tls_certificate ? "https" : "http";
   std::string host = made->address.host;
   if (host.find(':') != std::string::npos) host = "[" + host + "]";
@@ -188,11 +232,12 @@ Result<int> ServeCommand::run(const Call& call) {
   if (!running.ok()) return running.status();
   const std::string where = fmt::format("{}://{}:{}/", scheme, host, (*running)->port());
   if (Status status = print_result("listening on " + where + "\n"); !status.ok()) return status;
-  log->line("listening on " + where);
+  log->record(
+      {"listening", fmt::format("{} listens on {}, process {}", program_version(), where, ::getpid())});
   while (!token.cancelled()) std::this_thread::sleep_for(std::chrono::milliseconds(100));
-  log->line("ending");
+  log->record({"ending", "asked to end"});
   (*running)->stop();
-  log->line("ended");
+  log->record({"ended", "ended"});
   return 0;
 }
 

@@ -1,4 +1,5 @@
 // Changes of jobs as server-sent events.
+#include <algorithm>
 #include <charconv>
 
 #include "service/api.hpp"
@@ -7,7 +8,6 @@
 namespace stanchion::service {
 namespace {
 
-constexpr std::chrono::milliseconds kHeartbeat{15'000};
 constexpr std::chrono::milliseconds kLook{1'000};  // how soon the end of the service is noticed
 
 bool is_ended_text(const std::string& data) {
@@ -50,9 +50,10 @@ HttpResponse Api::events(const Call& call, const std::string& job) {
     } else if (!sink(": begin\n\n")) {
       return;
     }
+    const auto heartbeat = parts_.options.heartbeat;
     auto spoken = std::chrono::steady_clock::now();
     while (!closing_ && !parts_.feed.closed()) {
-      const auto news = parts_.feed.after(number, kLook);
+      const auto news = parts_.feed.after(number, std::min(kLook, heartbeat));
       std::string text;
       bool over = false;
       for (const FeedEvent& event : news) {
@@ -63,7 +64,7 @@ HttpResponse Api::events(const Call& call, const std::string& job) {
         if (over) break;
       }
       const auto now = std::chrono::steady_clock::now();
-      if (text.empty() && now - spoken >= kHeartbeat) text = ": still here\n\n";
+      if (text.empty() && now - spoken >= heartbeat) text = ": still here\n\n";
       if (text.empty()) continue;
       spoken = now;
       if (!sink(text) || over) return;

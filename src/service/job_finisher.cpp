@@ -33,8 +33,7 @@ std::vector<std::string> keep_files(const std::string& folder) {
 
 }  // namespace
 
-JobFinisher::JobFinisher(JobJournal& journal, InputStore& inputs, EventFeed& feed,
-                         std::function<void(const std::string&)> log)
+JobFinisher::JobFinisher(JobJournal& journal, InputStore& inputs, EventFeed& feed, LogSink log)
     : journal_(journal), inputs_(inputs), feed_(feed), log_(std::move(log)) {
   for (int k = 0; k < kThreads; ++k) threads_.emplace_back([this] { work(); });
 }
@@ -75,11 +74,15 @@ void JobFinisher::finish_one(FinishedRun& run) {
     if (!run.has_begun && !table.begin(job)) return;
     ended = table.end(job);
   });
-  if (!status.ok()) log_(fmt::format("job {}: its end could not be written: {}", job.id, status.message()));
+  if (!status.ok()) {
+    log_({"store-failed", "its end could not be written: " + status.message(), job.id, LogLevel::kError});
+  }
   if (!ended) return;
   if (!run.has_begun) ++job.attempts;
-  log_(fmt::format("job {}: {}{}", job.id, name_of(job.state),
-                   job.problem ? ", " + job.problem->detail : fmt::format(", exit code {}", *job.exit_code)));
+  log_({"job-ended",
+        fmt::format("{}, {}", name_of(job.state),
+                    job.problem ? job.problem->detail : fmt::format("exit code {}", *job.exit_code)),
+        job.id, job.problem ? LogLevel::kWarning : LogLevel::kInfo});
   {
     const std::lock_guard lock(mutex_);
     if (job.state == JobState::kDone) ++figures_.done;
@@ -103,7 +106,7 @@ void JobFinisher::work() {
     try {
       finish_one(run);
     } catch (const std::exception& error) {
-      log_(fmt::format("job {}: {}", run.job.id, error.what()));
+      log_({"job-failed-to-end", error.what(), run.job.id, LogLevel::kError});
     }
   }
 }

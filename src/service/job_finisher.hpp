@@ -5,12 +5,12 @@
 #include <condition_variable>
 #include <cstdint>
 #include <deque>
-#include <functional>
 #include <mutex>
 #include <string>
 #include <thread>
 #include <vector>
 
+#include "base/log_record.hpp"
 #include "service/event_feed.hpp"
 #include "service/input_store.hpp"
 #include "service/job_journal.hpp"
@@ -31,8 +31,7 @@ struct FinisherFigures {
 
 class JobFinisher {
  public:
-  JobFinisher(JobJournal& journal, InputStore& inputs, EventFeed& feed,
-              std::function<void(const std::string&)> log);
+  JobFinisher(JobJournal& journal, InputStore& inputs, EventFeed& feed, LogSink log);
   ~JobFinisher();
   JobFinisher(const JobFinisher&) = delete;
   JobFinisher& operator=(const JobFinisher&) = delete;
@@ -48,7 +47,7 @@ class JobFinisher {
   JobJournal& journal_;
   InputStore& inputs_;
   EventFeed& feed_;
-  std::function<void(const std::string&)> log_;
+  LogSink log_;
   mutable std::mutex mutex_;
   std::condition_variable changed_;
   std::deque<FinishedRun> runs_;

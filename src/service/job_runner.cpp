@@ -143,7 +143,7 @@ void JobRunner::run() {
       if (!stopping) start_some();
       wait_and_look();
     } catch (const std::exception& error) {
-      parts_.log(fmt::format("runner: {}", error.what()));
+      parts_.log({"runner-failed", error.what(), "", LogLevel::kError});
       std::this_thread::sleep_for(std::chrono::milliseconds(100));  // for want of memory, most likely
     }
   }
@@ -299,6 +299,7 @@ void JobRunner::start(std::vector<Prepared> jobs) {
         ++active.job.attempts;
         parts_.feed.publish("job", active.job.id, job_to_json(active.job, {}, false).dump());
       }
+      log_start(active);
       const std::lock_guard lock(mutex_);
       ++(active.forecasting ? figures_.forecasts : figures_.started);
       active_.push_back(std::move(active));
@@ -314,6 +315,15 @@ void JobRunner::start(std::vector<Prepared> jobs) {
     }
   }
   if (!written.ok()) throw std::runtime_error(written.message());
+}
+
+void JobRunner::log_start(const Active& active) const {
+  parts_.log({active.forecasting ? "forecast-started" : "job-started",
+              fmt::format("{} started, process {}, attempt {}, {} MiB, {} threads, {} s of processor time",
+                          active.forecasting ? "forecast" : active.job.command, active.child->pid(),
+                          active.job.attempts, active.needs.memory_bytes >> 20, active.needs.threads,
+                          active.needs.cpu_seconds),
+              active.job.id});
 }
 
 Status JobRunner::launch(Prepared& prepared) {
@@ -454,7 +464,11 @@ void JobRunner::ended(Active active, const ChildEnd& end) {
       end.kind == ChildEndKind::kExited && (end.exit_code == 0 || end.exit_code == 1 || end.exit_code == 3);
   if (!answered && active.stop_asked && !job.cancel_wanted) {
     const Status status = parts_.journal.write([&](JobTable& table) { table.put_back(job.number); });
-    if (!status.ok()) parts_.log(status.message());
+    if (status.ok()) {
+      parts_.log({"job-put-back", "stopped with the service, waits for the next one", job.id});
+    } else {
+      parts_.log({"store-failed", status.message(), job.id, LogLevel::kError});
+    }
     return;
   }
   job.exit_code = end.exit_code;

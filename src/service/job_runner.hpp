@@ -6,7 +6,6 @@
 #include <chrono>
 #include <cstdint>
 #include <deque>
-#include <functional>
 #include <map>
 #include <memory>
 #include <mutex>
@@ -15,6 +14,7 @@
 #include <thread>
 #include <vector>
 
+#include "base/log_record.hpp"
 #include "jobs/child_process.hpp"
 #include "service/event_feed.hpp"
 #include "service/input_store.hpp"
@@ -38,7 +38,7 @@ struct RunnerParts {
   std::string jobs_folder;
   MachineShare share;
   std::string program = "/proc/self/exe";
-  std::function<void(const std::string&)> log;
+  LogSink log;
 };
 
 struct RunnerFigures {
@@ -97,6 +97,7 @@ class JobRunner {
   bool fits(const JobNeeds& needs) const;
   void start(std::vector<Prepared> jobs);
   Status launch(Prepared& prepared);
+  void log_start(const Active& active) const;
   void wait_and_look();
   void look_after(Active& active);
   void ended(Active active, const ChildEnd& end);

@@ -152,7 +152,8 @@ Status Service::Parts::begin() {
   if (!bound.ok()) return bound.status();
   port = *bound;
   for (const std::int64_t number : queued) runner->enqueue(number);
-  if (!queued.empty()) options.log(fmt::format("{} jobs of an earlier run go on", queued.size()));
+  if (!queued.empty())
+    options.log({"recovered", fmt::format("{} jobs of an earlier run go on", queued.size())});
   housekeeper = std::thread([this] { keep_house(); });
   return {};
 }
@@ -188,7 +189,7 @@ void Service::Parts::keep_house() {
       inputs->evict();
       drop_old_jobs();
     } catch (const std::exception& error) {
-      options.log(fmt::format("housekeeping: {}", error.what()));
+      options.log({"housekeeping-failed", error.what(), "", LogLevel::kWarning});
     }
     guard.lock();
   }

@@ -8,6 +8,7 @@
 #include <string>
 #include <vector>
 
+#include "base/log_record.hpp"
 #include "jobs/job_request.hpp"
 #include "service/http_server.hpp"
 #include "service/job_needs.hpp"
@@ -34,7 +35,8 @@ struct ServiceOptions {
   HttpLimits http;
   std::chrono::milliseconds grace{10'000};
   RequestRules rules;
-  std::function<void(const std::string&)> log;  ///< one line each, from any thread
+  std::chrono::milliseconds heartbeat{15'000};  ///< a silent stream of events says something so often
+  LogSink log;
 };
 
 /// What contradicts itself or would be unsafe: an address beyond loopback without tokens, or without

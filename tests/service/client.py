@@ -66,12 +66,13 @@ class Answer:
 class Service:
     """One running service; `stop` or `kill` ends it."""
 
-    def __init__(self, store, *options, token=None, scheme="http", environment=None):
+    def __init__(self, store, *options, token=None, scheme="http", environment=None, log=None, type_log=True):
         self.token = token
-        self.log = pathlib.Path(store).parent / "service.log"
+        self.log = log or pathlib.Path(store).parent / "service.log"
         self.errors = open(pathlib.Path(store).parent / "service.err", "a", encoding="utf-8")
         self.process = subprocess.Popen(
-            [PROGRAM, "serve", "--store", str(store), "--port", "0", "--log", str(self.log), *map(str, options)],
+            [PROGRAM, "serve", "--store", str(store), "--port", "0", *(["--log", str(self.log)] if type_log else []),
+             *map(str, options)],
             stdout=subprocess.PIPE, stderr=self.errors, text=True, env={**os.environ, **(environment or {})})
         line = self.process.stdout.readline()
         found = re.match(scheme + r"://.*:(\d+)/", line.removeprefix("listening on "))
@@ -93,11 +94,13 @@ class Service:
         if isinstance(body, (bytes, bytearray)):
             fields.setdefault("Content-Type", "application/octet-stream")
         own = connection or self.connect()
-        own.request(method, path, body=body, headers=fields)
-        response = own.getresponse()
-        answer = Answer(response.status, response.headers, response.read())
-        if connection is None:
-            own.close()
+        try:
+            own.request(method, path, body=body, headers=fields)
+            response = own.getresponse()
+            answer = Answer(response.status, response.headers, response.read())
+        finally:
+            if connection is None:
+                own.close()
         if check:
             check_answer(method, path, answer.status, answer.headers.get("Content-Type", ""), answer.body)
         return answer
