@@ -79,11 +79,9 @@ class MessageStream : public httplib::Stream {
   }
 
   ssize_t write(const char* data, size_t bytes) override {
-    if (failed_ || !channel_.channel().write(data, bytes, limits_.piece_wait)) {
-      failed_ = true;
-      return -1;
-    }
-    return static_cast<ssize_t>(bytes);
+    for (size_t begin = 0; begin < bytes && !failed_; begin += kPiece)
+      failed_ = !write_piece(data + begin, std::min(kPiece, bytes - begin));
+    return failed_ ? -1 : static_cast<ssize_t>(bytes);
   }
 
   void get_remote_ip_and_port(std::string& ip, int& port) const override {
@@ -100,10 +98,22 @@ class MessageStream : public httplib::Stream {
   bool failed() const { return failed_; }
 
  private:
-  bool too_slow() const {
-    const auto seconds = std::chrono::duration_cast<std::chrono::seconds>(Clock::now() - began_).count();
-    return seconds > 30 &&
-           body_bytes_ < static_cast<std::uint64_t>(seconds - 30) * limits_.body_bytes_per_second;
+  static constexpr std::size_t kPiece = 65536;
+
+  /// Only the time counts in which the other end did not take what was there: a stream may be silent.
+  bool write_piece(const char* data, std::size_t bytes) {
+    const auto begun = Clock::now();
+    if (!channel_.channel().write(data, bytes, limits_.piece_wait)) return false;
+    write_time_ += Clock::now() - begun;
+    sent_bytes_ += bytes;
+    return !is_slow(write_time_, sent_bytes_);
+  }
+
+  bool too_slow() const { return is_slow(Clock::now() - began_, body_bytes_); }
+
+  bool is_slow(Clock::duration taken, std::uint64_t bytes) const {
+    const auto late = std::chrono::duration_cast<std::chrono::seconds>(taken - limits_.body_grace).count();
+    return late > 0 && bytes < static_cast<std::uint64_t>(late) * limits_.body_bytes_per_second;
   }
 
   BufferedChannel& channel_;
@@ -111,7 +121,8 @@ class MessageStream : public httplib::Stream {
   std::size_t at_ = 0;
   const HttpLimits& limits_;
   Clock::time_point began_;
-  std::uint64_t body_bytes_ = 0;
+  Clock::duration write_time_{};
+  std::uint64_t body_bytes_ = 0, sent_bytes_ = 0;
   bool failed_ = false;
 };
 

@@ -18,7 +18,8 @@ struct HttpLimits {
   Milliseconds head_wait{10'000};              ///< for the whole head, from its first byte
   Milliseconds idle_wait{60'000};              ///< between requests
   Milliseconds piece_wait{15'000};             ///< for some bytes of a body to come, or to go out
-  std::uint64_t body_bytes_per_second = 1024;  ///< slower bodies are broken off after the first half minute
+  std::uint64_t body_bytes_per_second = 1024;  ///< slower bodies are broken off once `body_grace` is over
+  std::chrono::seconds body_grace{30};
   int requests_per_connection = 100'000;
 };
 

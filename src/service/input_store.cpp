@@ -46,7 +46,12 @@ InputStore::InputStore(std::string folder, std::int64_t most_bytes, JobJournal& 
   fs::create_directories(folder_ + "/inputs");
   fs::create_directories(folder_ + "/analyses");
   for (const auto& entry : fs::directory_iterator(folder_ + "/inputs")) {
-    if (!is_digest(entry.path().filename().string())) fs::remove(entry.path());
+    // Half an upload, or a whole one of which the table was not told any more.
+    const std::string digest = entry.path().filename().string();
+    bool known = false;
+    const Status status =
+        journal_.read([&](JobTable& table) { known = table.find_input(digest).has_value(); });
+    if (!is_digest(digest) || (status.ok() && !known)) fs::remove(entry.path());
   }
 }
 

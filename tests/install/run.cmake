@@ -41,6 +41,31 @@ expect("0 negative, proved")
 expect("4 to 4 below 2")
 expect("no-such-file.mtx")
 
+# Pages and completion, where the shells and man look for them.
+file(GLOB_RECURSE programs ${prefix}/bin/stanchion)
+run(${programs} describe commands)
+string(REGEX MATCHALL "[a-z]+" commands "${output}")
+list(LENGTH commands count)
+if(count LESS 10)
+  message(FATAL_ERROR "only these commands: ${output}")
+endif()
+foreach(command IN LISTS commands)
+  run(${programs} describe man-${command})
+  file(READ ${prefix}/share/man/man1/stanchion-${command}.1 page)
+  if(NOT page STREQUAL output)
+    message(FATAL_ERROR "the page of ${command} is not the program's")
+  endif()
+endforeach()
+foreach(path man/man1/stanchion.1 bash-completion/completions/stanchion zsh/site-functions/_stanchion
+             fish/vendor_completions.d/stanchion.fish stanchion/systemd/stanchion.service stanchion/openapi.json
+             stanchion/page/index.html)
+  if(NOT EXISTS ${prefix}/share/${path})
+    message(FATAL_ERROR "not installed: share/${path}")
+  endif()
+endforeach()
+run(bash --norc -c "source ${prefix}/share/bash-completion/completions/stanchion && COMP_WORDS=(stanchion bra) && COMP_CWORD=1 && _stanchion && echo $COMPREPLY")
+expect("bracket")
+
 # The program itself.
 file(GLOB_RECURSE programs ${prefix}/bin/stanchion)
 run(${programs} check ${MODEL}/K.mtx)

@@ -2,14 +2,17 @@
 
 import hashlib
 import json
+import pathlib
+import re
 import shutil
 import threading
+import time
 import unittest
 
 import jsonschema
 from prometheus_client.parser import text_string_to_metric_families
 
-from client import API, SOURCE, ServiceTest, chain_text
+from client import API, SOURCE, ServiceTest, chain_text, children
 
 
 class DescriptionTest(ServiceTest):
@@ -31,11 +34,47 @@ class DescriptionTest(ServiceTest):
                             jsonschema.Draft202012Validator(schema).validate(content["example"])
 
     def test_the_document_is_openapi(self):
-        try:
-            from openapi_spec_validator import validate
-        except ImportError:
-            self.skipTest("openapi_spec_validator is not installed")
-        validate(API)
+        # The schema that the OpenAPI Initiative gives for 3.0, from Debian's package openapi-specification: of 3.1 there
+        # is none in it. Apart from schemas, which are held against theirs above, 3.1 added here only two facts.
+        path = pathlib.Path("/usr/share/openapi-specification/schemas/v3.0/schema.json")
+        if not path.exists():
+            self.skipTest("openapi-specification is not installed")
+
+        def without_schemas(node):
+            if isinstance(node, list):
+                return [without_schemas(item) for item in node]
+            if not isinstance(node, dict):
+                return node
+            empty = {"schema": lambda _: {}, "schemas": lambda names: {name: {} for name in names}}
+            return {key: empty.get(key, without_schemas)(value) for key, value in node.items()}
+
+        self.assertEqual(API["openapi"], "3.1.0")
+        document = {**without_schemas(API), "openapi": "3.0.3"}
+        del document["info"]["summary"], document["info"]["license"]["identifier"]
+        validator = jsonschema.Draft4Validator(json.loads(path.read_text(encoding="utf-8")))
+        self.assertEqual([error.message for error in validator.iter_errors(document)], [])
+        document["paths"]["/v1/jobs"]["get"]["responces"] = document["paths"]["/v1/jobs"]["get"].pop("responses")
+        self.assertFalse(validator.is_valid(document))
+
+    def test_references_and_parameters_of_the_description(self):
+        text = json.dumps(API)
+        for reference in set(re.findall(r'"\$ref": "([^"]+)"', text)):
+            self.assertTrue(reference.startswith("#/"), reference)
+            node = API
+            for part in reference[2:].split("/"):
+                node = node[part.replace("~1", "/").replace("~0", "~")]
+        names = []
+        for path, item in API["paths"].items():
+            for method, operation in item.items():
+                if method == "parameters":
+                    continue
+                names.append(operation["operationId"])
+                parameters = item.get("parameters", []) + operation.get("parameters", [])
+                parameters = [API["components"]["parameters"][entry["$ref"].split("/")[-1]] if "$ref" in entry else entry
+                              for entry in parameters]
+                declared = {entry["name"] for entry in parameters if entry["in"] == "path"}
+                self.assertEqual(declared, set(re.findall(r"{([a-z]+)}", path)), path)
+        self.assertEqual(len(set(names)), len(names))
 
     def test_it_is_served(self):
         self.assertEqual(self.serve().ask("GET", "/v1/openapi.json").json(), API)
@@ -201,6 +240,45 @@ class JobTest(ServiceTest):
         self.problem(service.ask("GET", "/v1/jobs/" + jobs[0]), 404, "unknown-job")
         self.assertFalse((self.store / "jobs" / jobs[0]).exists())
         self.problem(service.ask("DELETE", "/v1/jobs/" + jobs[0]), 404, "unknown-job")
+
+    def test_a_running_job_is_cancelled_with_its_process(self):
+        service = self.serve("--processors", "1")
+        (self.models / "long.mtx").write_text(chain_text(20000))
+        job = service.submit({"command": "sweep", "inputs": {"stiffness": "models/long.mtx"},
+                              "options": {"from": 0.1, "to": 3.9, "points": 50000}})["id"]
+        workers = []
+        while not workers or service.ask("GET", "/v1/jobs/" + job).json()["state"] != "running":
+            time.sleep(0.02)
+            workers = children(service.process.pid)
+        self.assertEqual(service.ask("POST", f"/v1/jobs/{job}/cancel", b"").status, 202)
+        ended = service.wait(job)
+        self.assertEqual((ended["state"], ended["exit_code"], ended["attempts"]), ("cancelled", 130, 1), ended)
+        self.assertEqual(children(service.process.pid), [])
+        self.assertFalse((self.store / "jobs" / job / "in").exists())
+        # Room for the next one.
+        self.assertEqual(service.wait(service.submit({"command": "check", "inputs": {"stiffness": "models/K.mtx"}})["id"])
+                         ["exit_code"], 0)
+
+    def test_a_silent_stream_says_that_it_is_there(self):
+        service = self.serve("--heartbeat", "1")
+        connection = service.connect()
+        connection.request("GET", "/v1/events")
+        response = connection.getresponse()
+        began, beats = time.monotonic(), 0
+        while beats < 3:
+            beats += b": still here" in response.fp.readline()
+        self.assertGreater(time.monotonic() - began, 2)
+        # A client that has gone is noticed by the next beat, and its thread ends.
+        response.close()
+        connection.close()
+        until = time.monotonic() + 20
+        while (left := self.metric(service, "stanchion_connections ")) > 1 and time.monotonic() < until:
+            time.sleep(0.1)
+        self.assertEqual(left, 1)
+
+    def metric(self, service, name):
+        lines = service.ask("GET", "/metrics").body.decode().splitlines()
+        return next(float(line.rsplit(" ", 1)[1]) for line in lines if line.startswith(name))
 
     def test_events(self):
         service = self.serve()

@@ -136,6 +136,19 @@ class Service:
         self.errors.close()
 
 
+def children(process):
+    """The process numbers of what a process has started."""
+    try:
+        with open(f"/proc/{process}/task/{process}/children", encoding="ascii") as file:
+            direct = file.read().split()
+        for task in os.listdir(f"/proc/{process}/task"):
+            with open(f"/proc/{process}/task/{task}/children", encoding="ascii") as file:
+                direct += file.read().split()
+        return [int(child) for child in set(direct)]
+    except OSError:
+        return []
+
+
 class ServiceTest(unittest.TestCase):
     """Each test has a folder with a store and a root "models"; services are stopped at its end."""
 

@@ -12,22 +12,10 @@ import threading
 import time
 import unittest
 
-from client import ServiceTest, chain_text
+from client import ServiceTest, chain_text, children
 
 KILLS = 100 if os.environ.get("STANCHION_LONG") else 6
 ENDED = {"done", "failed", "cancelled"}
-
-
-def children(process):
-    try:
-        with open(f"/proc/{process}/task/{process}/children", encoding="ascii") as file:
-            direct = file.read().split()
-        for task in os.listdir(f"/proc/{process}/task"):
-            with open(f"/proc/{process}/task/{task}/children", encoding="ascii") as file:
-                direct += file.read().split()
-        return [int(child) for child in set(direct)]
-    except OSError:
-        return []
 
 
 class CrashTest(ServiceTest):
