@@ -4,6 +4,7 @@
 #include <cmath>
 #include <cstdio>
 #include <cstdlib>
+#include <tuple>
 
 #include "base/fault_words.hpp"
 #include "engine/mode_search.hpp"
@@ -14,7 +15,7 @@ namespace {
 /// An end of the range lies in a gap of at least this relative width, so that the count there is easily
 /// certified.
 constexpr double kGap = 1e-5;
-constexpr int kMostAttempts = 4;
+constexpr int kMostAttempts = 5;
 
 class ResidualBrackets {
  public:
@@ -45,9 +46,7 @@ class ResidualBrackets {
   // ----------------------------------------------------------------------------------------
 
   Result<std::optional<CountFact>> count_at(double shift) {
-    for (const CountFact& fact : answer_.counts.facts()) {
-      if (fact.shift == shift) return std::optional<CountFact>(fact);
-    }
+    if (const CountFact* known = answer_.counts.at(shift)) return std::optional<CountFact>(*known);
     if (counter_.kind() == CountKind::kAbove && shift == counter_.origin()) {
       return std::optional<CountFact>(counter_.fact_at_origin());
     }
@@ -56,22 +55,74 @@ class ResidualBrackets {
     if (!count.ok()) return count.status();
     outcome_.warnings.resize(warnings);
     auto fact = counter_.fact(*count);
-    if (fact) answer_.counts.add(*fact);
-    if (!answer_.counts.contradictions().empty()) {
-      return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
-    }
-    return fact;
+    if (!fact) return fact;
+    return remember(*fact);
   }
 
-  FoundValues found_of(const std::vector<ResidualPair>& pairs, const EigenvalueGroup& group) const {
-    FoundValues found;
-    // 1 / theta - tau, both roundings outwards.
+  /// 1 / theta - tau of the two ends, both roundings outwards.
+  std::pair<double, double> values_of(const EigenvalueGroup& group) const {
     const double low = 1 / group.high, high = 1 / group.low;
     const auto outwards = [&](double value, double part, int direction) {
       return value + direction * 0x1p-51 * (std::fabs(value) + 2 * std::fabs(part) + 2 * base_->tau);
     };
-    found.low = outwards(low - base_->tau, low, -1);
-    found.high = outwards(high - base_->tau, high, 1);
+    return {outwards(low - base_->tau, low, -1), outwards(high - base_->tau, high, 1)};
+  }
+
+  /// The number at `shift`, when so many as `expected` were shown on its side already: no more than that is
+  /// then all that is left to show. Otherwise it is counted.
+  Result<std::optional<CountFact>> count_expecting(double shift, Offset expected) {
+    if (answer_.counts.at(shift)) return count_at(shift);
+    auto most = counter_.at_most(shift, static_cast<Index>(expected));
+    if (!most.ok()) return most.status();
+    if (*most && **most < expected) return too_many();
+    if (!*most || **most > expected) return count_at(shift);
+    const Offset number = counter_.two_sided() && shift < 0 ? -expected : expected;
+    CountFact fact{shift, number, number, std::nullopt, Level::kProved, 0};
+    for (const Certificate* why : {&base_->base.certificate(), &counter_.base()}) {
+      if (why->level != Level::kStatistical) continue;
+      fact.level = Level::kStatistical;
+      fact.failure_probability += why->failure_probability.value_or(0);
+    }
+    return remember(fact);
+  }
+
+  static Status too_many() {
+    return Status::internal(
+        std::string("more values lie in disjoint residual intervals than a certified count allows: ") +
+        kMachineOrProgram);
+  }
+
+  Result<std::optional<CountFact>> remember(const CountFact& fact) {
+    answer_.counts.add(fact);
+    if (answer_.counts.contradictions().empty()) return std::optional(fact);
+    return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
+  }
+
+  /// Groups of pairs by the side of zero they are on: their values come from different ends of the spectrum.
+  struct Sides {
+    std::vector<EigenvalueGroup> above, below;
+    static Offset number(const std::vector<EigenvalueGroup>& groups) {
+      Offset sum = 0;
+      for (const EigenvalueGroup& group : groups) sum += static_cast<Offset>(group.pairs.size());
+      return sum;
+    }
+  };
+
+  /// Those whose values lie between `from` and `to` for certain.
+  Sides groups_inside(const std::vector<ResidualPair>& pairs, double from, double to) const {
+    Sides sides;
+    for (EigenvalueGroup& group : disjoint_groups(base_->base, pairs)) {
+      if (!(group.low * group.high > 0) || !std::isfinite(group.low) || !std::isfinite(group.high)) continue;
+      const auto [low_end, high_end] = values_of(group);
+      if (!(low_end > from) || !(high_end < to)) continue;
+      (group.low > 0 ? sides.above : sides.below).push_back(std::move(group));
+    }
+    return sides;
+  }
+
+  FoundValues found_of(const std::vector<ResidualPair>& pairs, const EigenvalueGroup& group) const {
+    FoundValues found;
+    std::tie(found.low, found.high) = values_of(group);
     double sum = 0;
     for (const std::size_t p : group.pairs) sum += base_->shift_of(pairs[p].theta);
     found.value = std::clamp(sum / static_cast<double>(group.pairs.size()), found.low, found.high);
@@ -94,21 +145,15 @@ class ResidualBrackets {
                       const CountFact& high, double from, double to) {
     const CountedRange range = counted_range(low, high, from, to);
     if (!range.count) return false;
-    FoundRange found;
-    Offset sum = 0;
-    for (const EigenvalueGroup& group : disjoint_groups(base_->base, pairs)) {
-      if (!(group.low * group.high > 0) || !std::isfinite(group.low) || !std::isfinite(group.high)) continue;
-      FoundValues values = found_of(pairs, group);
-      if (!(values.low > from) || !(values.high < to)) continue;
-      sum += values.count;
-      found.values.push_back(std::move(values));
-    }
-    if (sum > *range.count) {
-      return Status::internal(
-          std::string("more values lie in disjoint residual intervals than a certified count allows: ") +
-          kMachineOrProgram);
-    }
+    Sides sides = groups_inside(pairs, from, to);
+    const Offset sum = Sides::number(sides.above) + Sides::number(sides.below);
+    if (sum > *range.count) return too_many();
     if (sum < *range.count) return false;
+    sharpen_all(pairs, from, to, sides);
+    FoundRange found;
+    for (const auto* groups : {&sides.above, &sides.below}) {
+      for (const EigenvalueGroup& group : *groups) found.values.push_back(found_of(pairs, group));
+    }
     std::sort(found.values.begin(), found.values.end(),
               [](const FoundValues& a, const FoundValues& b) { return a.low < b.low; });
     for (FoundValues& values : found.values) {
@@ -119,6 +164,18 @@ class ResidualBrackets {
     found.complete = range;
     answer_.found = std::move(found);
     return true;
+  }
+
+  /// The groups are all that is between the two ends: each is alone between its neighbours, and the outermost
+  /// have an end beside them, or nothing up to infinity. The ends of theta are rounded inwards.
+  void sharpen_all(const std::vector<ResidualPair>& pairs, double from, double to, Sides& sides) const {
+    const double pole = -base_->tau;
+    const auto inwards = [&](double shift, int direction) {
+      const double theta = base_->theta_of(shift);
+      return theta + direction * 0x1p-50 * std::fabs(theta);
+    };
+    sharpen(base_->base, pairs, inwards(to, 1), from > pole ? inwards(from, -1) : INFINITY, sides.above);
+    sharpen(base_->base, pairs, to < pole ? inwards(to, 1) : -INFINITY, inwards(from, -1), sides.below);
   }
 
   /// Below this no value is counted.
@@ -202,7 +259,7 @@ class ResidualBrackets {
       if (!pairs.ok()) return pairs.status();
       auto done = settle(*pairs, low, high, from, to);
       if (!done.ok() || *done) return done;
-      search_->inject();
+      search_->look_closer();
     }
     return false;
   }
@@ -270,7 +327,7 @@ class ResidualBrackets {
         answer_.fewer_than_asked = static_cast<Index>(std::max<Offset>(0, static_cast<Offset>(wanted) - sum));
         return true;
       }
-      search_->inject();
+      search_->look_closer();
     }
     return false;
   }
@@ -297,8 +354,9 @@ class ResidualBrackets {
     }
     std::optional<CountFact> low, high;
     const CountFact zero = counter_.fact_at_origin();
+    const Sides shown = groups_inside(pairs, counter_.two_sided() ? -end : -base_->tau, end);
     if (side != Side::kNegative) {
-      auto counted = count_at(end);
+      auto counted = count_expecting(end, Sides::number(shown.above));
       if (!counted.ok()) return counted.status();
       high = *counted;
     } else {
@@ -306,7 +364,7 @@ class ResidualBrackets {
     }
     if (counter_.two_sided()) low = zero;
     if (side != Side::kPositive) {
-      auto counted = count_at(-end);
+      auto counted = count_expecting(-end, Sides::number(shown.below));
       if (!counted.ok()) return counted.status();
       low = *counted;
     }

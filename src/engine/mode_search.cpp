@@ -13,6 +13,9 @@ namespace {
 constexpr double kNoise = 1e-13;
 /// What is left of the closeness inside the spectrum, where residuals weigh more than at its end.
 constexpr double kInside = 1e-3;
+/// Thetas stand apart when their gap is that many times their residuals; so many may be one group.
+constexpr double kApart = 4;
+constexpr std::size_t kMostTogether = 16;
 
 void append(std::vector<ResidualPair>& all, std::vector<ResidualPair> more) {
   for (ResidualPair& pair : more) all.push_back(std::move(pair));
@@ -21,6 +24,44 @@ void append(std::vector<ResidualPair>& all, std::vector<ResidualPair> more) {
 double worst(const std::vector<ResidualPair>& pairs) {
   double most = 0;
   for (const ResidualPair& pair : pairs) most = std::max(most, pair.radius / std::fabs(pair.theta));
+  return most;
+}
+
+struct Estimate {
+  double theta = 0, residual = 0;
+  std::size_t number = 0;
+};
+
+/// How far from its value each theta is expected to be: by its residual, or, for groups that stand apart, by
+/// its spread and the square of the residual over the gap beside it. Estimates; `sharpen` proves.
+std::vector<double> expected_errors(std::vector<Estimate> all, double apart) {
+  std::vector<double> errors(all.size());
+  std::sort(all.begin(), all.end(), [](const Estimate& a, const Estimate& b) { return a.theta < b.theta; });
+  const auto meet = [&](const Estimate& a, const Estimate& b) {
+    const double gap = b.theta - a.theta;
+    return gap < kApart * (a.residual + b.residual) || gap < apart * std::fabs(b.theta);
+  };
+  for (std::size_t first = 0, end = 0; first < all.size(); first = end) {
+    double squares = 0;
+    for (end = first; end < all.size() && (end == first || meet(all[end - 1], all[end])); ++end)
+      squares += all[end].residual * all[end].residual;
+    const double below = first > 0 ? all[first].theta - all[first - 1].theta : INFINITY;
+    const double above = end < all.size() ? all[end].theta - all[end - 1].theta : INFINITY;
+    const double spread = (all[end - 1].theta - all[first].theta) / 2;
+    const double together = spread + squares / std::min(below, above);
+    for (std::size_t k = first; k < end; ++k)
+      errors[all[k].number] = std::min(all[k].residual, end - first > kMostTogether ? INFINITY : together);
+  }
+  return errors;
+}
+
+/// The same for pairs, relative to their thetas: the worst.
+double worst_expected(const std::vector<ResidualPair>& pairs, double apart) {
+  std::vector<Estimate> all;
+  for (std::size_t p = 0; p < pairs.size(); ++p) all.push_back({pairs[p].theta, pairs[p].radius, p});
+  const std::vector<double> errors = expected_errors(all, apart);
+  double most = 0;
+  for (std::size_t p = 0; p < pairs.size(); ++p) most = std::max(most, errors[p] / std::fabs(pairs[p].theta));
   return most;
 }
 
@@ -42,6 +83,20 @@ bool ModeSearch::interrupted() const {
 
 double ModeSearch::closeness() const {
   return 0.1 * request_.bracket.width * (centre_ ? kInside : 1);
+}
+
+/// Intervals may be sharpened by gaps: not inside the spectrum, where the pairs are of the inverse at a
+/// shift, and not where the shapes themselves are asked for, whose error falls with the residual only.
+bool ModeSearch::squares() const {
+  return !strict_ && !centre_ && !request_.bracket.want_modes;
+}
+
+void ModeSearch::look_closer() {
+  if (squares()) {
+    strict_ = true;
+  } else {
+    lanczos_->inject();
+  }
 }
 
 void ModeSearch::start(Index wanted, const KeptValues& keep) {
@@ -105,7 +160,7 @@ void ModeSearch::make_space(BlockLanczos::Operator apply, Index wanted, const Ke
       std::min({most, std::max<Offset>(room / kV * kV, 6 * kV), std::max<Offset>(order / kV * kV, 6 * kV)});
   // The basis, vectors and work blocks, and the factor that a count at an end, or the shift inside, keeps
   // beside the base's.
-  const Offset doubles = Offset{order} * (most + 2 * wanted + 8 * kV);
+  const Offset doubles = Offset{order} * (most + 3 * wanted + 8 * kV);
   outcome_.memory.forecast =
       std::max(outcome_.memory.forecast,
                resident_bytes() + with_allowance(doubles * Offset{sizeof(double)} +
@@ -124,6 +179,16 @@ Candidates ModeSearch::candidates(Side side) {
     const double theta = centre_ ? *centre_ + 1 / ritz.value : ritz.value;
     if (!centre_ && side != Side::kBoth && (side == Side::kPositive) != (theta > 0)) continue;
     found.list.push_back({ritz, theta, ritz.residual <= closeness() * std::fabs(ritz.value)});
+  }
+  if (squares()) {
+    std::vector<Estimate> estimates;
+    for (std::size_t k = 0; k < found.list.size(); ++k)
+      estimates.push_back({found.list[k].theta, found.list[k].ritz.residual, k});
+    const std::vector<double> errors = expected_errors(std::move(estimates), closeness());
+    for (std::size_t k = 0; k < found.list.size(); ++k) {
+      Candidate& candidate = found.list[k];
+      candidate.close = candidate.close || errors[k] <= closeness() * std::fabs(candidate.theta);
+    }
   }
   while (found.leading < found.list.size() && found.list[found.leading].close) ++found.leading;
   return found;
@@ -160,7 +225,8 @@ Result<std::vector<ResidualPair>> ModeSearch::pairs_of(const std::vector<Candida
                                  static_cast<Index>(chosen.size())));
   }
   // A step of inverse iteration towards the largest would lead away from values inside.
-  if (!centre_ && !pairs.empty() && worst(pairs) > request_.bracket.width / 3) refine(pairs);
+  const double expected = squares() ? worst_expected(pairs, closeness()) : worst(pairs);
+  if (!centre_ && !pairs.empty() && expected > request_.bracket.width / 3) refine(pairs);
   return pairs;
 }
 

@@ -15,7 +15,7 @@ namespace stanchion {
 struct Candidate {
   RitzValue ritz;
   double theta = 0;    ///< as an eigenvalue of C x = theta B x
-  bool close = false;  ///< by the estimate of its residual
+  bool close = false;  ///< by the estimate of its residual and, in a gap, the square of it
 };
 
 /// What the space holds of one side, or of both, by size.
@@ -47,8 +47,9 @@ class ModeSearch {
   /// Rigorous pairs for the first `many` of `list`, refined where they are not close enough.
   Result<std::vector<ResidualPair>> pairs_of(const std::vector<Candidate>& list, std::size_t many);
 
-  /// A block of fresh random vectors joins the space.
-  void inject() { lanczos_->inject(); }
+  /// When values were missed: residuals must be small by themselves from now on, or, when that was asked
+  /// already, a block of fresh random vectors joins the space.
+  void look_closer();
 
   /// Size of the largest theta found so far; 0 when nothing is.
   double largest();
@@ -56,6 +57,7 @@ class ModeSearch {
  private:
   void make_space(BlockLanczos::Operator apply, Index wanted, const KeptValues& keep);
   double closeness() const;
+  bool squares() const;
   bool interrupted() const;
   void refine(std::vector<ResidualPair>& pairs);
 
@@ -72,6 +74,7 @@ class ModeSearch {
   std::optional<BlockLanczos> lanczos_;
   std::vector<double> work_;
   Index wanted_ = 0;
+  bool strict_ = false;  ///< no use is made of what gaps add to a residual
   KeptValues keep_;
 };
 

@@ -105,7 +105,7 @@ void PencilCounter::warn(const char* code, std::string message) {
 
 /// A = [K B^T; B 0]: with q multipliers n-(A) - q is the number of negative directions on the constraints
 /// when A is not singular, for B has full rank then, and lies in the same place of the range when it is
-/// (Gould 1985; spectrum/residual_bound.md, 5). The second matrix must not touch the multipliers.
+/// (Gould 1985; spectrum/residual_bound.md, 6). The second matrix must not touch the multipliers.
 void PencilCounter::look_at_multipliers(const ModelInput& model) {
   if (model.multipliers.empty() || request_.pencil == Pencil::kStiffness) return;
   std::vector<char> is_multiplier(static_cast<std::size_t>(model.stiffness.rows), 0);
@@ -276,7 +276,7 @@ Status PencilCounter::judge_stiffness() {
 }
 
 /// K - s M definite at one s < 0 makes counts of the values above that s, whatever M is
-/// (spectrum/residual_bound.md, 5). So a free body whose M has null vectors of its own is counted. Powers of
+/// (spectrum/residual_bound.md, 6). So a free body whose M has null vectors of its own is counted. Powers of
 /// ten, so that another path finds the same.
 Result<bool> PencilCounter::look_for_origin() {
   const double size = pencil_->size_ratio();
@@ -382,6 +382,16 @@ Result<ShiftCount> PencilCounter::count(double shift) {
   auto found = inertia_at(shift, request_.pencil == Pencil::kGeometric);
   if (!found.ok()) return found.status();
   return count_from(shift, *found, outcome_.warnings);
+}
+
+/// All but k are positive at the shift, so at most k are not.
+Result<std::optional<Index>> PencilCounter::at_most(double shift, Index expected) {
+  if (kind_at(shift) == CountKind::kDirections) return std::optional<Index>{};
+  auto found =
+      pencil_->certify_positive_side(factor_of(shift), expected + negative_on_massless_, pool_, outcome_);
+  if (!found.ok()) return found.status();
+  if (found->certificate.level == Level::kNone) return std::optional<Index>{};
+  return std::optional(std::max<Index>(0, found->inertia.undecided - negative_on_massless_));
 }
 
 Result<ShiftCount> PencilCounter::count_apart(double shift, Index number, int share, ThreadPool& pool,

@@ -47,9 +47,14 @@ class PencilCounter {
     return count_from(shift, found, outcome_.warnings);
   }
 
-  /// The same with a risk of its own, as event `number` of the document (from 1, each used once); everything
-  /// is booked in `scratch`. For shifts side by side, each with a pool of its own; `share` of the memory
-  /// each.
+  /// At most how many values lie between the origin and `shift` (kBelow: below it), or at the shift itself;
+  /// nothing where none is certified, or counts are not of values. Half the cost of count() when `expected`
+  /// is the number.
+  Result<std::optional<Index>> at_most(double shift, Index expected);
+
+  /// As count(), with a risk of its own, as event `number` of the document (from 1, each used once);
+  /// everything is booked in `scratch`. For shifts side by side, each with a pool of its own; `share` of the
+  /// memory each.
   Result<ShiftCount> count_apart(double shift, Index number, int share, ThreadPool& pool,
                                  Outcome& scratch) const;
 

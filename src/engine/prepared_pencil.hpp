@@ -44,6 +44,11 @@ class PreparedPencil {
   Result<CertifiedInertia> certify(double factor, bool definite_first, double data_error, ThreadPool& pool,
                                    Outcome& outcome);
 
+  /// How many eigenvalues are positive for certain, from one factorization where all but `all_but` are; the
+  /// others are undecided. By an offset in double precision.
+  Result<CertifiedInertia> certify_positive_side(double factor, Index all_but, ThreadPool& pool,
+                                                 Outcome& outcome);
+
   /// As certify(), with a risk of its own: what event `number` of the document may fail with. Safe to call
   /// side by side, each call with its own `pool` and `scratch`; each may keep a factor in one of `share`
   /// parts of the memory.
@@ -129,6 +134,7 @@ class PreparedPencil {
                                Outcome& outcome);
   Result<CertifiedInertia> run_on(const ShiftedMatrix& matrix, const CertifyOptions& options,
                                   RiskBudget& risk, ThreadPool& pool, Outcome& outcome) const;
+  Status cannot_keep_factor(Offset needed, const Outcome& outcome) const;
   Offset counting_bytes() const;
   Offset bytes_for_factor() const;
 

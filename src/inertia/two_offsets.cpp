@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 #include <cstdio>
+#include <utility>
 
 #include "base/fault_words.hpp"
 #include "extended/factorize.hpp"
@@ -55,7 +56,7 @@ class OffsetScheme {
       }
       if (!options_.resolution) offset = std::max(offset, std::max(norm, 0x1p-500) * guess(false));
     }
-    return both_offsets(offset);
+    return options_.all_positive_but ? positive_side(offset) : both_offsets(offset);
   }
 
  private:
@@ -135,6 +136,25 @@ class OffsetScheme {
     found_.inertia = {0, 0, 0, rows_};
     found_.certificate.level = Level::kNone;
     found_.unresolved_because = std::move(because);
+  }
+
+  /// n - k are positive; a smaller offset when that leaves more undecided than expected and can help.
+  Result<CertifiedInertia> positive_side(double offset) {
+    for (int round = 0; round < kMostRounds; ++round) {
+      auto below = factor(offset, false);
+      if (!below.ok()) return below.status();
+      if (below->breakdown) break;
+      const bool holds = offset > below->bound;
+      if (holds && (found_.certificate.level == Level::kNone || below->negative < found_.inertia.undecided)) {
+        settle(rows_ - below->negative, 0, offset, below->bound);
+        found_.inertia.undecided = std::exchange(found_.inertia.zero, 0);
+      }
+      if (holds && (below->negative <= *options_.all_positive_but || offset <= kSharpenAbove * below->bound))
+        break;
+      offset = kMargin * below->bound;
+    }
+    if (found_.certificate.level == Level::kNone) give_up("no offset above the error bound was found");
+    return found_;
   }
 
   Result<CertifiedInertia> both_offsets(double offset) {

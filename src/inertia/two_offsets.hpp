@@ -23,6 +23,8 @@ struct OffsetOptions {
   double data_error = 0;             ///< bound on the 2-norm of what the scaled entries themselves may be off
   bool sharpen = true;               ///< where zeros are left, try again with a smaller offset
   std::optional<KeptFactorization>* keep = nullptr;  ///< takes the last factorization at a positive offset
+  /// Only how many are positive for certain, when all but this many are: A_s + cI is not factored.
+  std::optional<Index> all_positive_but;
   FactorOptions factor;  ///< threshold, cap, progress, cancellation; `definite` is set here
 };
 
@@ -43,11 +45,12 @@ struct CertifiedInertia {
 /// both, at least m = n-(A_s + cI) eigenvalues are negative, at least n - k with k = n-(A_s - cI) are
 /// positive, the k - m between are zero at the resolution c (of either sign). k = 0 proves positive
 /// definiteness from one factorization, with lambda_min(A_s) >= c - eta-. Derivation: error_bound.md. The
-/// offset of `matrix` is ignored. Without `resolution` c follows the bounds, so that an answer exists unless
-/// the factorization breaks down; the zeros then say what the precision used could not tell apart. Level:
-/// proved, or none with the reason. Errors: those of factorize(); internal when the counts contradict the
-/// bounds (a fault of machine or program). Cost: one factorization in the good definite case, otherwise two
-/// to six.
+/// offset of `matrix` is ignored. With `all_positive_but` the k others are undecided, c smaller on a second
+/// try where more than the number given are. Without `resolution` c follows the bounds, so that an answer
+/// exists unless the factorization breaks down; the zeros then say what the precision used could not tell
+/// apart. Level: proved, or none with the reason. Errors: those of factorize(); internal when the counts
+/// contradict the bounds (a fault of machine or program). Cost: one factorization in the good definite case,
+/// otherwise two to six.
 Result<CertifiedInertia> certify_by_offsets(const Analysis& analysis, const ShiftedMatrix& matrix,
                                             const OffsetOptions& options, ThreadPool& pool);
 

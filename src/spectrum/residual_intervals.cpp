@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
+#include <functional>
 #include <numeric>
 
 #include "dense/symmetric_eigen.hpp"
@@ -15,18 +16,40 @@ constexpr auto kV = static_cast<std::size_t>(kBlockVectors);
 constexpr double kUnit = 0x1p-53;
 using Sums = std::array<double, kV>;
 
+constexpr Offset kPieces =
+    16;  ///< of the rows, each with sums of its own: the same for any number of threads
+
+/// `work(first, end)` on ranges of rows, over the threads.
+void for_rows(ThreadPool& pool, std::size_t rows,
+              const std::function<void(std::size_t, std::size_t, Offset)>& work) {
+  pool.run(kPieces, [&](Offset piece, int) {
+    const auto of = [&](Offset number) {
+      return rows * static_cast<std::size_t>(number) / static_cast<std::size_t>(kPieces);
+    };
+    if (of(piece) < of(piece + 1)) work(of(piece), of(piece + 1), piece);
+  });
+}
+
 /// Column by column sum of a_i b_i.
-Sums dots(const std::vector<double>& a, const std::vector<double>& b) {
+Sums dots(ThreadPool& pool, const std::vector<double>& a, const std::vector<double>& b) {
+  std::array<Sums, kPieces> parts{};
+  for_rows(pool, a.size() / kV, [&](std::size_t first, std::size_t end, Offset piece) {
+    Sums sums{};
+    for (std::size_t i = first * kV; i < end * kV; i += kV) {
+      for (std::size_t v = 0; v < kV; ++v) sums[v] += a[i + v] * b[i + v];
+    }
+    parts[static_cast<std::size_t>(piece)] = sums;
+  });
   Sums sums{};
-  for (std::size_t i = 0; i < a.size(); i += kV) {
-    for (std::size_t v = 0; v < kV; ++v) sums[v] += a[i + v] * b[i + v];
+  for (const Sums& part : parts) {
+    for (std::size_t v = 0; v < kV; ++v) sums[v] += part[v];
   }
   return sums;
 }
 
 /// Norms rounded up: sums of squares of up to 2^31 terms.
-Sums norms(const std::vector<double>& block) {
-  Sums sums = dots(block, block);
+Sums norms(ThreadPool& pool, const std::vector<double>& block) {
+  Sums sums = dots(pool, block, block);
   for (double& s : sums) s = std::sqrt(s) * 1.000001;
   return sums;
 }
@@ -48,15 +71,31 @@ Interval interval_of(const DefiniteBase& base, const std::vector<ResidualPair>& 
     const ResidualPair& pair = pairs[members.front()];
     return {pair.theta - pair.radius, pair.theta + pair.radius};
   }
-  const auto k = static_cast<double>(members.size());
-  double least = INFINITY, most = -INFINITY, residual = 0, deviation = 0, stray = 0;
+  double least = INFINITY, most = -INFINITY, residual = 0;
   for (const std::size_t p : members) {
     least = std::min(least, pairs[p].theta);
     most = std::max(most, pairs[p].theta);
     const double scaled = pairs[p].residual / pairs[p].norm;
     residual += scaled * scaled;
-    stray = std::max(stray, base.solve_error() * pairs[p].length / pairs[p].norm);
   }
+  const double epsilon = gram_defect(base, pairs, members);
+  if (!(epsilon < 0.9)) return {-INFINITY, INFINITY};
+  const double rho = 1.001 * std::sqrt(residual), middle = least + (most - least) / 2;
+  const double spread = std::max(most - middle, middle - least);
+  const double reach = 1.001 * (((1 + epsilon) * spread + std::sqrt(1 + epsilon) * rho) / (1 - epsilon) +
+                                rho / std::sqrt(1 - epsilon)) +
+                       4 * kUnit * std::fabs(middle);
+  return {middle - reach, middle + reach};
+}
+
+}  // namespace
+
+double gram_defect(const DefiniteBase& base, const std::vector<ResidualPair>& pairs,
+                   const std::vector<std::size_t>& members) {
+  const auto k = static_cast<double>(members.size());
+  double deviation = 0, stray = 0;
+  for (const std::size_t p : members)
+    stray = std::max(stray, base.solve_error() * pairs[p].length / pairs[p].norm);
   // Y^T Y - I of the normalised coordinates, entry by entry, with the rounding of a dot product of n terms.
   const double rows = static_cast<double>(base.rows());
   for (const std::size_t p : members) {
@@ -71,18 +110,8 @@ Interval interval_of(const DefiniteBase& base, const std::vector<ResidualPair>& 
   }
   // X^T B X = (Y + H)^T (I + F)(Y + H), every column of Y of norm about 1, of H at most `stray`.
   const double y = std::sqrt(1 + std::sqrt(deviation)), h = std::sqrt(k) * stray;
-  const double epsilon =
-      1.001 * (std::sqrt(deviation) + base.relative() * (y + h) * (y + h) + 2 * y * h + h * h);
-  if (!(epsilon < 0.9)) return {-INFINITY, INFINITY};
-  const double rho = 1.001 * std::sqrt(residual), middle = least + (most - least) / 2;
-  const double spread = std::max(most - middle, middle - least);
-  const double reach = 1.001 * (((1 + epsilon) * spread + std::sqrt(1 + epsilon) * rho) / (1 - epsilon) +
-                                rho / std::sqrt(1 - epsilon)) +
-                       4 * kUnit * std::fabs(middle);
-  return {middle - reach, middle + reach};
+  return 1.001 * (std::sqrt(deviation) + base.relative() * (y + h) * (y + h) + 2 * y * h + h * h);
 }
-
-}  // namespace
 
 std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix& second,
                                          const std::vector<double>& coordinates, Index count) {
@@ -91,21 +120,24 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
   std::vector<double> bx(x.size()), cx(x.size());
   extended_times(base.matrix(), x.data(), bx.data(), base.pool());
   extended_times(second, x.data(), cx.data(), base.pool());
-  const Sums energy = dots(x, bx), work = dots(x, cx);
+  ThreadPool& pool = base.pool();
+  const Sums energy = dots(pool, x, bx), work = dots(pool, x, cx);
   const AbsoluteNorm base_size = absolute_norm(base.matrix()), second_size = absolute_norm(second);
-  const Sums x_norm = norms(x), b_norm = norms(bx), c_norm = norms(cx);
+  const Sums x_norm = norms(pool, x), b_norm = norms(pool, bx), c_norm = norms(pool, cx);
   Sums theta{};
   for (std::size_t v = 0; v < kV; ++v) theta[v] = energy[v] > 0 ? work[v] / energy[v] : 0;
   std::vector<double> z(x.size());
-  for (std::size_t i = 0; i < z.size(); i += kV) {
-    for (std::size_t v = 0; v < kV; ++v) z[i + v] = cx[i + v] - theta[v] * bx[i + v];
-  }
-  const Sums r_norm = norms(z);
+  for_rows(pool, z.size() / kV, [&](std::size_t first, std::size_t end, Offset) {
+    for (std::size_t i = first * kV; i < end * kV; i += kV) {
+      for (std::size_t v = 0; v < kV; ++v) z[i + v] = cx[i + v] - theta[v] * bx[i + v];
+    }
+  });
+  const Sums r_norm = norms(pool, z);
   base.solve(z.data());
-  const Sums z_norm = norms(z), y_norm = norms(coordinates);
-  std::vector<ResidualPair> pairs;
-  for (std::size_t v = 0; v < static_cast<std::size_t>(count); ++v) {
-    ResidualPair pair;
+  const Sums z_norm = norms(pool, z), y_norm = norms(pool, coordinates);
+  std::vector<ResidualPair> pairs(static_cast<std::size_t>(count));
+  for (std::size_t v = 0; v < pairs.size(); ++v) {
+    ResidualPair& pair = pairs[v];
     const double size = std::fabs(theta[v]);
     // r as computed differs from C x - theta B x by the roundings of both products, of theta times one, of
     // the sum.
@@ -115,17 +147,20 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
     const double shrink = std::sqrt(1 - base.relative());
     pair.theta = theta[v];
     pair.length = x_norm[v];
-    pair.residual =
-        1.001 * (z_norm[v] + base.inverse_norm() * (rounding + base.solve_error() * z_norm[v])) / shrink;
+    pair.floor = 1.001 * base.inverse_norm() * (rounding + base.solve_error() * z_norm[v]);
+    pair.residual = 1.001 * (z_norm[v] + pair.floor) / shrink;
     pair.norm = y_norm[v];
     // norms() rounds up: take that off again where a lower bound is needed.
     const double least = shrink * (y_norm[v] / 1.000002 - base.solve_error() * x_norm[v]);
     pair.radius = least > 0 ? 1.001 * pair.residual / least + 4 * kUnit * size : INFINITY;
     if (!(pair.radius >= 0) || !std::isfinite(pair.radius)) pair.radius = INFINITY;
-    pair.coordinates = column_of(coordinates, v);
-    pair.vector = column_of(x, v);
-    pairs.push_back(std::move(pair));
   }
+  pool.run(static_cast<Offset>(pairs.size()), [&](Offset column, int) {
+    const auto v = static_cast<std::size_t>(column);
+    pairs[v].coordinates = column_of(coordinates, v);
+    pairs[v].residual_coordinates = column_of(z, v);
+    pairs[v].vector = column_of(x, v);
+  });
   return pairs;
 }
 

@@ -15,9 +15,11 @@ struct ResidualPair {
   double norm =
       0;  ///< of the coordinates, so that x / norm has unit energy but for the base's relative error
   double residual = 0;              ///< bound on the energy norm of the residual, for vectors of any norm
+  double floor = 0;                 ///< bound on M^-1 r less `residual_coordinates`
   double length = 0;                ///< of x itself
   std::vector<double> coordinates;  ///< y of x = M^-T y
-  std::vector<double> vector;       ///< x, in elimination order, of the scaled matrix
+  std::vector<double> residual_coordinates;  ///< M^-1 r as computed, r = C x - theta B x
+  std::vector<double> vector;                ///< x, in elimination order, of the scaled matrix
 };
 
 /// Pairs from `coordinates`, a block of approximate eigenvectors of M^-1 C M^-T (the first `count` columns;
@@ -32,6 +34,10 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
 std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const ShiftedMatrix& second,
                                                      const std::vector<ResidualPair>& pairs);
 
+/// Bound on ||X^T B X - I|| for the vectors `members` of `pairs`, each divided by its norm.
+double gram_defect(const DefiniteBase& base, const std::vector<ResidualPair>& pairs,
+                   const std::vector<std::size_t>& members);
+
 /// An interval that certainly holds at least `pairs.size()` eigenvalues, counted with multiplicity.
 struct EigenvalueGroup {
   double low = 0, high = 0;        ///< of theta, low <= high
@@ -43,5 +49,11 @@ struct EigenvalueGroup {
 /// show nothing (an infinite radius, or coordinates that depend on each other) are left out.
 std::vector<EigenvalueGroup> disjoint_groups(const DefiniteBase& base,
                                              const std::vector<ResidualPair>& pairs);
+
+/// Sharper intervals once it is certain that the eigenvalues between `below` and `above` (either may be
+/// infinite) are those of `groups`, as many as their pairs: ascending, disjoint, inside. The error of a group
+/// falls with the square of its residuals over its distance from what is beside it (residual_bound.md, 4).
+void sharpen(const DefiniteBase& base, const std::vector<ResidualPair>& pairs, double below, double above,
+             std::vector<EigenvalueGroup>& groups);
 
 }  // namespace stanchion

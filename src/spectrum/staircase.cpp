@@ -39,6 +39,13 @@ void Staircase::add(const CountFact& fact) {
   facts_.insert(at, fact);
 }
 
+const CountFact* Staircase::at(double shift) const {
+  for (const CountFact& fact : facts_) {
+    if (fact.shift == shift) return &fact;
+  }
+  return nullptr;
+}
+
 std::vector<Contradiction> Staircase::contradictions() const {
   std::vector<Contradiction> found;
   const std::vector<Step> least = lower_steps(facts_), most = upper_steps(facts_);

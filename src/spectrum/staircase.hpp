@@ -29,6 +29,9 @@ struct CountFact {
 
 class Staircase {
  public:
+  /// The fact at `shift` itself; null when there is none.
+  const CountFact* at(double shift) const;
+
   void add(const CountFact& fact);
 
   /// In the order of shifts.

@@ -2,6 +2,8 @@
 
 #include <gtest/gtest.h>
 
+#include <algorithm>
+
 #include "support/factored.hpp"
 #include "support/generators.hpp"
 
@@ -65,6 +67,25 @@ TEST(Certify, SingularEndsAtAResolutionAfterARefusedAttemptThatIsCharged) {
   EXPECT_EQ(found.certificate.level, Level::kProved);
   EXPECT_GT(found.inertia.zero, 0);
   EXPECT_EQ(risk.attempts(), 1);
+}
+
+/// The eigenvalue next above the shift lies 4e-10 from it, below the first offset: the second try tells.
+TEST(Certify, ThePositiveSideAloneTakesOneFactorizationOrTwo) {
+  std::vector<double> values = test::laplacian_spectrum(31, 23, 1);
+  std::sort(values.begin(), values.end());
+  for (const double distance : {0.5 * (values[50] - values[49]), 4e-10}) {
+    ASSERT_GT(values[50] - values[49], 2 * 4e-10);
+    const auto prepared = prepare(laplacian(31, 23, 1, values[50] - distance), 1);
+    OffsetOptions options;
+    options.all_positive_but = 50;
+    const auto found = certify_by_offsets(prepared.analysis, prepared.shifted(0), options, *prepared.pool);
+    ASSERT_TRUE(found.ok());
+    EXPECT_EQ(found->factorizations, distance > 4e-10 ? 1 : 2);
+    EXPECT_EQ(found->certificate.level, Level::kProved);
+    EXPECT_EQ(found->inertia.negative + found->inertia.zero, 0);
+    EXPECT_EQ(found->inertia.undecided, 50);
+    EXPECT_EQ(found->inertia.positive, 31 * 23 - 50);
+  }
 }
 
 TEST(Certify, TheLikelyWorkIsWhatIsDone) {

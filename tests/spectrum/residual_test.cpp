@@ -110,6 +110,85 @@ TEST(ResidualIntervals, RefiningMakesThemTighter) {
   EXPECT_LT(after, before / 100);
 }
 
+/// Once the groups are known to be all, each must still hold exactly as many values as it has vectors: of all
+/// values, of those of one side, of those beyond an end that lies on no value.
+TEST(SharperIntervals, HoldExactlyTheirEigenvalues) {
+  std::size_t sharper = 0, grouped = 0;
+  for (unsigned seed = 1; seed <= 12; ++seed) {
+    const KnownPencil known = known_pencil(grid_values(60, seed), seed);
+    PencilParts parts(known);
+    DefiniteBase base = parts.make_base();
+    for (const double noise : {0.0, 1e-9, 1e-7, 1e-6, 1e-5, 1e-4}) {
+      SCOPED_TRACE(testing::Message() << "seed " << seed << ", noise " << noise);
+      const auto pairs = pairs_with_noise(known, parts, base, noise);
+      const auto crude = disjoint_groups(base, pairs);
+      for (const double below : {-HUGE_VAL, -0.5 * 0x1p-12, 0.25 + 0.5 * 0x1p-12}) {
+        std::vector<EigenvalueGroup> groups;
+        bool apart = true;
+        for (const EigenvalueGroup& group : crude) {
+          apart = apart && (group.low > below || group.high < below);
+          if (group.low > below) groups.push_back(group);
+        }
+        if (!apart) continue;
+        const std::vector<EigenvalueGroup> before = groups;
+        sharpen(base, pairs, below, HUGE_VAL, groups);
+        ASSERT_EQ(groups.size(), before.size());
+        for (std::size_t g = 0; g < groups.size(); ++g) {
+          EXPECT_GE(groups[g].low, before[g].low);
+          EXPECT_LE(groups[g].high, before[g].high);
+          const auto inside = std::count_if(known.thetas.begin(), known.thetas.end(), [&](double theta) {
+            return theta >= groups[g].low && theta <= groups[g].high;
+          });
+          EXPECT_EQ(static_cast<std::size_t>(inside), groups[g].pairs.size());
+          const bool much = groups[g].high - groups[g].low < 0.05 * (before[g].high - before[g].low);
+          sharper += much;
+          grouped += much && groups[g].pairs.size() > 1;
+        }
+      }
+    }
+  }
+  EXPECT_GT(sharper, 500u);  // else nothing was tried
+  EXPECT_GT(grouped, 20u);
+}
+
+/// The width of an interval falls with the square of the noise.
+TEST(SharperIntervals, FallWithTheSquareOfTheResidual) {
+  const KnownPencil known = known_pencil({4, 2, 2, 1, 0.5, -0.25, -0.5, -1, -2, -2}, 9);
+  PencilParts parts(known);
+  DefiniteBase base = parts.make_base();
+  double widest[2] = {0, 0}, crude = 0;
+  for (const int k : {0, 1}) {
+    const auto pairs = pairs_with_noise(known, parts, base, k == 0 ? 1e-4 : 1e-6);
+    auto groups = disjoint_groups(base, pairs);
+    ASSERT_EQ(groups.size(), 8u);
+    for (const EigenvalueGroup& group : groups)
+      if (k == 0) crude = std::max(crude, group.high - group.low);
+    sharpen(base, pairs, -HUGE_VAL, HUGE_VAL, groups);
+    for (const EigenvalueGroup& group : groups) widest[k] = std::max(widest[k], group.high - group.low);
+  }
+  EXPECT_LT(widest[0], crude / 50);
+  EXPECT_LT(widest[1], widest[0] / 2000);
+}
+
+/// Where the ends leave out a value that is there, the claim is false, and so may be what follows from it:
+/// the intervals do rest on the count.
+TEST(SharperIntervals, RestOnTheNumberBeingRight) {
+  const KnownPencil known = known_pencil({4, 1.0009765625, 1, 0.25}, 9);
+  PencilParts parts(known);
+  DefiniteBase base = parts.make_base();
+  auto pairs = pairs_with_noise(known, parts, base, 0);
+  // A vector between the two close ones, beside the largest and the smallest.
+  std::vector<double> block(4 * kBlockVectors, 0.0);
+  for (std::size_t i = 0; i < 4; ++i)
+    block[i * kBlockVectors] = pairs[1].coordinates[i] + pairs[2].coordinates[i];
+  std::vector<ResidualPair> three{pairs[0], residual_pairs(base, parts.second(), block, 1).front(), pairs[3]};
+  auto groups = disjoint_groups(base, three);
+  ASSERT_EQ(groups.size(), 3u);
+  sharpen(base, three, -HUGE_VAL, HUGE_VAL, groups);
+  EXPECT_LT(groups[1].high, 1.0009765625);
+  EXPECT_GT(groups[1].low, 1.0);
+}
+
 /// 4000 equal products whose sum rounds the same way every time, and two that cancel it but for its last
 /// digits. The error of the double-double sum is 300 u^2 of its size, far above what two members could lose.
 TEST(ResidualIntervals, CountTheMembersOfASum) {
