@@ -3,6 +3,7 @@
 #include <cstdio>
 
 #include "base/clock.hpp"
+#include "base/fault_words.hpp"
 #include "engine/bracket_counts.hpp"
 #include "engine/bracket_residual.hpp"
 #include "engine/side_by_side.hpp"
@@ -151,8 +152,37 @@ class Audit {
     auto counts = runner.run(shifts);
     if (!counts.ok()) return counts.status();
     outcome_.warnings.resize(warnings);
-    compare_counts(*counts);
+    const auto stretches = stretches_between(*counts);
+    if (!stretches) return {};
+    const std::vector<double> ends = ends_of_tolerances(*stretches);
+    auto at_ends = runner.run(ends);
+    if (!at_ends.ok()) return at_ends.status();
+    outcome_.warnings.resize(warnings);
+    for (const ShiftCount& count : *at_ends) {
+      if (const auto fact = counter_.fact(count)) known_.add(*fact);
+    }
+    if (!known_.contradictions().empty())
+      return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
+    if (answer_.range.level == Level::kStatistical) answer_.range.failure_probability = outcome_.risk;
+    report(*stretches, nullptr);
     return {};
+  }
+
+  /// Where the numbers agree, the ends of what each listed value may be off by: the right number may still be
+  /// of other values.
+  std::vector<double> ends_of_tolerances(const std::vector<Stretch>& stretches) const {
+    std::vector<double> ends;
+    for (const Stretch& stretch : stretches) {
+      if (stretch.listed != stretch.certain) continue;
+      for (const std::size_t k : stretch.members) {
+        for (const double end : {spans_[k].low, spans_[k].high}) {
+          if (end > from_ && end < to_ && known_.at(end) == nullptr) ends.push_back(end);
+        }
+      }
+    }
+    std::sort(ends.begin(), ends.end());
+    ends.erase(std::unique(ends.begin(), ends.end()), ends.end());
+    return ends;
   }
 
   /// Nothing is counted below the range: its lower end needs no count.
@@ -160,8 +190,8 @@ class Audit {
     return !std::isfinite(from_) || (counter_.kind() == CountKind::kAbove && from_ == counter_.origin());
   }
 
-  void compare_counts(const std::vector<ShiftCount>& counts) {
-    answer_.proof = "counts in every gap of the list";
+  std::optional<std::vector<Stretch>> stretches_between(const std::vector<ShiftCount>& counts) {
+    answer_.proof = "counts in every gap of the list, and at the ends of every tolerance";
     std::vector<CountFact> facts;
     if (!std::isfinite(from_)) {
       facts.push_back({from_, 0, 0, std::nullopt, Level::kProved, 0});
@@ -179,7 +209,10 @@ class Audit {
           "an end of the range lies on a value, or cannot be counted at. Remedy: give --from and --to a "
           "little elsewhere");
       give_up();
-      return;
+      return std::nullopt;
+    }
+    for (const CountFact& fact : facts) {
+      if (std::isfinite(fact.shift) && known_.at(fact.shift) == nullptr) known_.add(fact);
     }
     std::vector<Stretch> stretches;
     for (std::size_t k = 1; k < facts.size(); ++k) {
@@ -198,8 +231,7 @@ class Audit {
     }
     answer_.range = counted_range(std::isfinite(from_) ? std::optional(facts.front()) : std::nullopt,
                                   facts.back(), from_, to_);
-    if (answer_.range.level == Level::kStatistical) answer_.range.failure_probability = outcome_.risk;
-    report(stretches, nullptr);
+    return stretches;
   }
 
   // ---- verdict
@@ -212,10 +244,15 @@ class Audit {
   }
 
   /// As many listed as there are, and each within its tolerance of one of its own.
-  bool fits(const Stretch& stretch, const FoundRange* found) const {
-    if (found == nullptr || stretch.listed < 2) return true;
+  bool fits(const Stretch& stretch, const FoundRange* found) {
     std::vector<ValueSpan> listed, certain;
     for (const std::size_t k : stretch.members) listed.push_back(spans_[k]);
+    if (found == nullptr) {
+      const Placement placed = placement(listed, known_.facts());
+      placement_open_ = placement_open_ || placed == Placement::kOpen;
+      return placed != Placement::kRefuted;
+    }
+    if (stretch.listed < 2) return true;
     for (const std::size_t k : stretch.certain_spans) {
       const FoundValues& values = found->values[k];
       certain.push_back({values.low, values.high, values.count, {}});
@@ -240,6 +277,13 @@ class Audit {
                       : missing          ? AuditVerdict::kMissing
                       : surplus          ? AuditVerdict::kSurplus
                                          : AuditVerdict::kComplete;
+    if (placement_open_) {
+      answer_.proof = "counts in every gap of the list";
+      answer_.sentences.emplace_back(
+          "The number in every gap is certified. That every value listed is within its tolerance of one of "
+          "its own could "
+          "not be shown: the end of a tolerance lies on a value, or cannot be counted at.");
+    }
     if (missing && surplus) {
       answer_.sentences.emplace_back(
           "A value listed beyond its tolerance from a true one counts twice: surplus where it is listed, "
@@ -286,7 +330,7 @@ class Audit {
   std::vector<ValueSpan> clusters_;
   Staircase known_;
   double from_ = 0, to_ = 0;
-  bool unresolved_ = false;
+  bool unresolved_ = false, placement_open_ = false;
 };
 
 Result<Outcome> audit_model(ModelInput model, const Request& request, const RunContext& context,

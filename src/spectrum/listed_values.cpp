@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <limits>
 
 namespace stanchion {
 namespace {
@@ -95,6 +96,38 @@ std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, doubl
     shifts.push_back(middle(clusters[k - 1].high, clusters[k].low));
   shifts.push_back(to);
   return shifts;
+}
+
+Placement placement(const std::vector<ValueSpan>& listed, const std::vector<CountFact>& facts) {
+  // Least and most number of values below each end, from the facts on its two sides. `most` counts a value on
+  // the shift itself, too.
+  const auto below = [&](double at) {
+    std::pair<Offset, Offset> number{std::numeric_limits<Offset>::min() / 4,
+                                     std::numeric_limits<Offset>::max() / 4};
+    for (const CountFact& fact : facts) {
+      if (fact.shift <= at) number.first = std::max(number.first, fact.least);
+      if (fact.shift >= at) number.second = std::min(number.second, fact.most);
+    }
+    return number;
+  };
+  std::vector<std::pair<Offset, Offset>> at_low, at_high;
+  for (const ValueSpan& span : listed) {
+    at_low.push_back(below(span.low));
+    at_high.push_back(below(span.high));
+  }
+  Placement answer = Placement::kShown;
+  for (std::size_t i = 0; i < listed.size(); ++i) {
+    for (std::size_t j = 0; j < listed.size(); ++j) {
+      Offset contained = 0;
+      for (const ValueSpan& span : listed) {
+        if (span.low >= listed[i].low && span.high <= listed[j].high) contained += span.count;
+      }
+      if (contained == 0) continue;
+      if (contained > at_high[j].second - at_low[i].first) return Placement::kRefuted;
+      if (contained > at_high[j].first - at_low[i].second) answer = Placement::kOpen;
+    }
+  }
+  return answer;
 }
 
 }  // namespace stanchion

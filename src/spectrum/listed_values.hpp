@@ -4,6 +4,8 @@
 #include <cstddef>
 #include <vector>
 
+#include "spectrum/staircase.hpp"
+
 #include "stanchion/types.hpp"
 
 namespace stanchion {
@@ -40,5 +42,14 @@ bool each_has_its_own(const std::vector<ValueSpan>& listed, const std::vector<Va
 /// Where one count each tells what every cluster holds: `from`, the middle between neighbouring clusters,
 /// `to`.
 std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to);
+
+enum class Placement { kShown, kRefuted, kOpen };
+
+/// Whether each of the closed `listed` spans has a value of its own in it, by counts alone: `facts`,
+/// ascending, say how many values there are below their shifts. Spans and values are taken to be equal in
+/// number (counts around them). By Hall's theorem each has its own exactly when every interval from the low
+/// end of one span to the high end of another holds as many values as it contains spans. Counts at all ends
+/// of all spans tell, unless one of them lies on a value.
+Placement placement(const std::vector<ValueSpan>& listed, const std::vector<CountFact>& facts);
 
 }  // namespace stanchion

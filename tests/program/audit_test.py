@@ -39,6 +39,19 @@ class AuditTest(ProgramTest):
         for method in ((), ("--digits", 12)):
             self.assertEqual(self.audit(1, swapped, *method)["verdict"], "missing_and_surplus")
 
+    def test_a_value_moved_within_its_own_gap_is_noticed(self):
+        # As many in every gap as are listed, but one of them far beyond its tolerance.
+        moved = FIRST[:5] + [FIRST[5] * 1.001] + FIRST[6:]
+        for method in ((), ("--digits", 12)):
+            document = self.audit(1, moved, *method)
+            self.assertEqual(document["verdict"], "missing_and_surplus")
+        gap, = document["gaps"]
+        self.assertEqual((gap["listed"], gap["counted"]), (1, 1))
+        self.assertTrue(gap["low"] < FIRST[5] < gap["high"])
+        # What the digits leave open is said to be open.
+        document = self.audit(0, FIRST, "--digits", 12, "--tolerance", "1e-11")
+        self.assertTrue(any("could not be shown" in sentence for sentence in document["sentences"]), document["sentences"])
+
     def test_one_missing(self):
         for method in ((), ("--digits", 12)):
             document = self.audit(1, FIRST[:5] + FIRST[6:], "--find-missing", *method)
@@ -88,12 +101,14 @@ class AuditTest(ProgramTest):
         # Tolerances meet from value to value, and the number is right, but none lies near the last one listed.
         path = self.matrix("D.mtx", 4, diagonal([1, 1.1, 1.2, 9]))
         (self.folder / "t.csv").write_text("value,tolerance\n1.1,0.2\n1.4,0.15\n1.8,0.35\n", encoding="ascii")
-        document = self.expect(1, "audit", path, "--values", "t.csv")
-        self.assertEqual(document["verdict"], "missing_and_surplus")
-        gap, = document["gaps"]
-        self.assertEqual((gap["listed"], gap["counted"]), (3, 3))
+        for method in ((), ("--digits", 12)):
+            document = self.expect(1, "audit", path, "--values", "t.csv", *method)
+            self.assertEqual(document["verdict"], "missing_and_surplus")
+            gap, = document["gaps"]
+            self.assertEqual((gap["listed"], gap["counted"]), (3, 3))
         (self.folder / "t.csv").write_text("value,tolerance\n1.05,0.2\n1.25,0.2\n1.15,0.06\n", encoding="ascii")
-        self.expect(0, "audit", path, "--values", "t.csv")
+        for method in ((), ("--digits", 12)):
+            self.expect(0, "audit", path, "--values", "t.csv", *method)
 
     def test_hertz_and_omega2(self):
         mass = self.matrix("M.mtx", ROWS, diagonal([1] * ROWS))

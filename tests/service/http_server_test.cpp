@@ -132,7 +132,9 @@ TEST_F(SlowClients, ChunksThatTrickleAreCutOff) {
 
 TEST_F(SlowClients, ABodyThatIsFastEnoughIsTakenWhole) {
   const FileHandle client = connect();
-  ASSERT_TRUE(send(client, "POST /body HTTP/1.1\r\nHost: localhost\r\nConnection: close\r\nContent-Length: 10000\r\n\r\n"));
+  ASSERT_TRUE(
+      send(client,
+           "POST /body HTTP/1.1\r\nHost: localhost\r\nConnection: close\r\nContent-Length: 10000\r\n\r\n"));
   for (int piece = 0; piece < 20; ++piece) {
     ASSERT_TRUE(send(client, std::string(500, 'x')));
     std::this_thread::sleep_for(milliseconds(100));

@@ -16,9 +16,8 @@ namespace fs = std::filesystem;
 class InputStoreTest : public testing::Test {
  protected:
   void SetUp() override {
-    folder_ = fs::temp_directory_path() /
-              ("stanchion-store-" + std::to_string(::getpid()) + "-" +
-               testing::UnitTest::GetInstance()->current_test_info()->name());
+    folder_ = fs::temp_directory_path() / ("stanchion-store-" + std::to_string(::getpid()) + "-" +
+                                           testing::UnitTest::GetInstance()->current_test_info()->name());
     fs::create_directories(folder_);
     auto opened = JobJournal::open((folder_ / "jobs.sqlite").string());
     ASSERT_TRUE(opened.ok());

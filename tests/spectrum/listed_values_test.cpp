@@ -2,6 +2,9 @@
 
 #include <gtest/gtest.h>
 
+#include <algorithm>
+#include <random>
+
 namespace stanchion {
 namespace {
 
@@ -47,6 +50,42 @@ TEST(ListedValues, EachNeedsAValueOfItsOwn) {
   EXPECT_FALSE(
       each_has_its_own({{0.9, 1.1, 1, {}}, {1.2, 1.8, 1, {}}, {1.9, 2.1, 1, {}}}, certain));  // none there
   EXPECT_TRUE(each_has_its_own({{0.9, 3, 1, {}}, {0.9, 1, 1, {}}}, certain));
+}
+
+/// Counts at every end against the assignment of values that are known.
+TEST(ListedValues, CountsAtTheEndsPlaceAsKnownValuesDo) {
+  std::mt19937 random(11);
+  int shown = 0, refuted = 0;
+  for (int round = 0; round < 4000; ++round) {
+    const int n = 1 + static_cast<int>(random() % 6);
+    std::vector<ValueSpan> listed, certain;
+    std::vector<double> values;
+    for (int k = 0; k < n; ++k) {
+      const double low = static_cast<double>(random() % 20);
+      listed.push_back(span(low, low + 1 + static_cast<double>(random() % 6)));
+      // In its own span, mostly.
+      values.push_back(random() % 8 > 0 ? low + 0.5 : static_cast<double>(random() % 24) + 0.5);
+    }
+    std::sort(values.begin(), values.end());
+    for (const double value : values) certain.push_back(span(value, value));
+    std::vector<CountFact> facts;
+    for (int at = -1; at <= 30; ++at) {
+      const Offset below = std::lower_bound(values.begin(), values.end(), at) - values.begin();
+      facts.push_back({static_cast<double>(at), below, below, std::nullopt, Level::kProved, 0});
+    }
+    const bool own = each_has_its_own(listed, certain);
+    EXPECT_EQ(placement(listed, facts), own ? Placement::kShown : Placement::kRefuted);
+    own ? ++shown : ++refuted;
+    // Fewer facts may leave it open, never turn it round.
+    std::vector<CountFact> fewer{facts.front()};
+    for (std::size_t k = 1; k + 1 < facts.size(); ++k) {
+      if (random() % 2 == 0) fewer.push_back(facts[k]);
+    }
+    fewer.push_back(facts.back());
+    EXPECT_NE(placement(listed, fewer), own ? Placement::kRefuted : Placement::kShown);
+  }
+  EXPECT_GT(shown, 500);
+  EXPECT_GT(refuted, 500);
 }
 
 }  // namespace
