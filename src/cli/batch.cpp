@@ -23,6 +23,8 @@
 namespace stanchion::cli {
 namespace {
 
+constexpr std::int64_t kUsualCpuLimit = 7 * 86'400;  // nothing runs for ever
+
 /// Part `number` of `parts`, from 1.
 struct Shard {
   std::size_t number = 1, parts = 1;
@@ -81,7 +83,8 @@ void BatchCommand::declare(Arguments& arguments) {
   arguments.text("--memory-cap", memory_cap_, "SIZE",
                  "of all jobs together (default: four fifths of the memory); decides how many run at a time");
   arguments.whole("--threads", threads_, "N", "of all jobs together (default: every processor available)");
-  arguments.whole("--cpu-limit", cpu_limit_, "SECONDS", "processor time that one job may take");
+  arguments.whole("--cpu-limit", cpu_limit_, "SECONDS",
+                  "processor time that one job may take (604800, a week)");
   arguments.text("--analysis-store", store_, "DIR",
                  "keep elimination orders here for later runs (default: for this run only)");
   arguments.closing(
@@ -147,7 +150,7 @@ Result<BatchOptions> BatchCommand::batch_options() const {
     return Status::bad_usage("out-of-range", fmt::format("{} is out of range", *cpu_limit_), "--cpu-limit",
                              "give a whole number of seconds from 1");
   }
-  options.cpu_seconds = cpu_limit_;
+  options.cpu_seconds = cpu_limit_.value_or(kUsualCpuLimit);
   options.analysis_store = store_.value_or("");
   options.reports = reports_.value_or("");
   options.certificates = certificates_.value_or("");

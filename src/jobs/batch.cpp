@@ -255,10 +255,11 @@ class Batch {
     Waiting& waiting = ended.waiting;
     waiting.seconds += ended.watch.seconds();
     waiting.cpu_seconds += end.cpu_seconds;
-    const bool memory =
-        end.kind == ChildEndKind::kMemory || (end.kind == ChildEndKind::kCrashed && end.signal == SIGABRT);
+    // A library that is refused memory may abort; a defect does so, too, and then again with all the memory.
+    const bool aborted = end.kind == ChildEndKind::kCrashed && end.signal == SIGABRT;
+    const bool memory = end.kind == ChildEndKind::kMemory || (aborted && waiting.attempts < 2);
     if (memory && ended.need < options_.memory_cap && waiting.attempts < kMostAttempts) {
-      waiting.need = std::min(2 * ended.need, options_.memory_cap);
+      waiting.need = aborted ? options_.memory_cap : std::min(2 * ended.need, options_.memory_cap);
       log(waiting, fmt::format("{}; once more with {} bytes", end.reason, *waiting.need));
       queue_.push_front(std::move(waiting));
       return {};

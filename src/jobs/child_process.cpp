@@ -67,7 +67,7 @@ Status cannot_start(const std::string& what) {
       "run fewer jobs at a time, or raise the limits of processes and open files");
 }
 
-/// Everything the child needs between fork and exec, where nothing may be allocated.
+/// Everything the child needs before it runs the program.
 struct Launch {
   const char* program;
   const char* working_folder;
@@ -84,17 +84,22 @@ void limit(int resource, rlim_t soft, rlim_t hard) {
   ::setrlimit(static_cast<__rlimit_resource>(resource), &limits);
 }
 
-/// Runs in the child: only what may be called after fork in a process with threads.
+/// Runs in the child, on the parent's memory: system calls only, nothing allocated, nothing of the parent's
+/// changed.
 [[noreturn]] void become(const Launch& launch) {
   const auto fail = [&launch]() {
     const int error = errno;
     const ssize_t written = ::write(launch.failure, &error, sizeof error);
     ::_exit(written == sizeof error ? 127 : 126);
   };
+  // No handler of the parent's may run here, on the parent's memory.
+  for (const int number : {SIGINT, SIGTERM, SIGHUP, SIGQUIT, SIGALRM, SIGCHLD, SIGUSR1, SIGUSR2}) {
+    if (::signal(number, SIG_DFL) == SIG_IGN) ::signal(number, SIG_IGN);
+  }
+  ::signal(SIGPIPE, SIG_DFL);
   sigset_t none;
   sigemptyset(&none);
   ::sigprocmask(SIG_SETMASK, &none, nullptr);
-  ::signal(SIGPIPE, SIG_DFL);
   ::setpgid(0, 0);
   ::prctl(PR_SET_PDEATHSIG, SIGKILL);
   if (::getppid() != launch.parent) ::_exit(126);  // the parent went before the line above
@@ -117,6 +122,20 @@ void limit(int resource, rlim_t soft, rlim_t hard) {
   ::execve(launch.program, launch.arguments, launch.environment);
   fail();
   ::_exit(126);
+}
+
+/// The new process borrows the memory of this thread, which waits, until it runs the program: copying the
+/// page tables of a service, and its page faults afterwards, took longer than a small job.
+pid_t start_child(const Launch& launch) {
+  sigset_t all, before;
+  sigfillset(&all);
+  ::pthread_sigmask(SIG_SETMASK, &all, &before);
+  const pid_t pid = ::vfork();
+  if (pid == 0) become(launch);
+  const int error = errno;
+  ::pthread_sigmask(SIG_SETMASK, &before, nullptr);
+  errno = error;
+  return pid;
 }
 
 bool is_crash(int number) {
@@ -179,9 +198,8 @@ Result<ChildProcess> ChildProcess::start(const ChildPlan& plan) {
   }
   if (plan.cpu_seconds) launch.cpu = static_cast<rlim_t>(*plan.cpu_seconds);
 
-  const pid_t pid = ::fork();
+  const pid_t pid = start_child(launch);
   if (pid < 0) return cannot_start("fork");
-  if (pid == 0) become(launch);
   ChildProcess child;
   child.pid_ = pid;
   ::setpgid(pid, pid);  // also here, so that stop() reaches it from now on

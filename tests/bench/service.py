@@ -1,11 +1,11 @@
 """Submit latency and throughput of the service, open loop: jobs are due at fixed times, whether or not earlier answers came,
 and latency counts from when a job was due. Load goes to loopback only.
 
-Usage: service.py --program build/release/bin/stanchion --out build/bench [--jobs N] [--rate R] [--connections C]
+Usage: service.py --program build/release/bin/stanchion --out build/bench [--jobs N] [--rate R] [--connections C] [--throughput-jobs N]
+[--repeat N] [--parts latency,throughput]
 """
 
 import argparse
-import concurrent.futures
 import http.client
 import json
 import os
@@ -45,11 +45,11 @@ def start(program, store, models):
     return process, int(re.search(r":(\d+)/", process.stdout.readline())[1])
 
 
-def submit_open_loop(port, jobs, rate, connections):
+def submit_open_loop(port, jobs, rate, connections, lead=1.0):
     """Latencies in seconds, and what went wrong."""
     body = json.dumps({"command": "check", "inputs": {"stiffness": "models/K.mtx"}})
     latencies, errors, lock = [], [], threading.Lock()
-    begin = time.monotonic() + 1.0
+    begin = time.monotonic() + lead
     ready = threading.Barrier(connections)
 
     def work(number):
@@ -89,17 +89,83 @@ def total(port, state):
     return count
 
 
-def by_command_line(program, model, jobs, folder):
-    """Jobs a second with as many processes at a time as the service runs, the same files written."""
-    def one(number):
-        names = {"--json": "json", "--html": "html", "--csv": "csv", "--junit": "xml", "--certificate": "cert"}
-        outputs = [f"{option}={folder}/{number}.{ending}" for option, ending in names.items()]
-        subprocess.run([program, "check", model, "--threads=1", "--quiet", *outputs], check=True, stdout=subprocess.DEVNULL)
+OUTPUTS = {"--json": "result.json", "--html": "report.html", "--csv": "answer.csv", "--junit": "junit.xml",
+           "--certificate": "certificate.json", "--log": "log.txt"}
 
+
+def by_service(program, models, jobs, folder):
+    """Jobs a second from the first submit to the last end, all submitted at once over eight connections."""
+    process, port = start(program, folder + "/store-throughput", models)
     begin = time.monotonic()
-    with concurrent.futures.ThreadPoolExecutor(2 * os.cpu_count()) as pool:
-        list(pool.map(one, range(jobs)))
+    submit_open_loop(port, jobs, 1e9, 8, lead=0)
+    submitted = time.monotonic() - begin
+    while total(port, "done") < jobs:
+        time.sleep(0.1)
+    rate = jobs / (time.monotonic() - begin)
+    process.send_signal(signal.SIGTERM)
+    process.wait()
+    return rate, submitted
+
+
+def by_command_line(program, model, jobs, folder, processes):
+    """The same jobs by xargs, `processes` at a time as the service runs them, each with the files a job leaves."""
+    def words(number):
+        place = f"{folder}/by-command-line/{number}"
+        os.makedirs(place)
+        outputs = " ".join(f"{option}={place}/{name}" for option, name in OUTPUTS.items())
+        return f"check {model} --threads=1 {outputs}"
+
+    lines = "\n".join(words(number) for number in range(jobs))
+    begin = time.monotonic()
+    subprocess.run(["xargs", "-P", str(processes), "-L", "1", program], input=lines, text=True, check=True,
+                   stdout=subprocess.DEVNULL)
     return jobs / (time.monotonic() - begin)
+
+
+def by_batch(program, model, jobs, folder):
+    """The same jobs as one file; each leaves its answer, its page and its certificate."""
+    lines = [json.dumps({"id": f"j{number}", "command": "check", "inputs": {"stiffness": str(model)}})
+             for number in range(jobs)]
+    path = pathlib.Path(folder) / "jobs.jsonl"
+    path.write_text("\n".join(lines) + "\n", encoding="utf-8")
+    begin = time.monotonic()
+    subprocess.run([program, "batch", path, "--quiet", "--reports", folder + "/reports", "--certificates",
+                    folder + "/certificates", "--logs", folder + "/logs"], check=True)
+    return jobs / (time.monotonic() - begin)
+
+
+def latency(asked, models, folder):
+    process, port = start(asked.program, folder + "/store", models)
+    latencies, errors = submit_open_loop(port, asked.jobs, asked.rate, asked.connections)
+    end = time.monotonic() + asked.drain
+    done_then = total(port, "done")
+    while total(port, "queued") + total(port, "running") > 0 and time.monotonic() < end:
+        time.sleep(0.2)
+    result = {
+        "jobs": asked.jobs, "rate": asked.rate, "connections": asked.connections, "errors": errors[:20],
+        "accepted": len(latencies), "in_the_store": sum(total(port, state) for state in ("queued", "running", "done", "failed")),
+        "done": total(port, "done"), "failed": total(port, "failed"),
+        "submit_ms": {"median": 1e3 * statistics.median(latencies),
+                      "p99": 1e3 * latencies[int(0.99 * len(latencies))], "max": 1e3 * latencies[-1]},
+        "jobs_per_second_while_submitting": done_then / (asked.jobs / asked.rate),
+    }
+    process.send_signal(signal.SIGTERM)
+    process.wait()
+    return result
+
+
+def throughput(asked, models, folder):
+    """Each way in turn, several times; the median of each."""
+    model, count = models / "K.mtx", asked.throughput_jobs
+    rates = {"service": [], "command_line": [], "batch": []}
+    for turn in range(asked.repeat):
+        place = f"{folder}/{turn}"
+        os.makedirs(place)
+        rates["service"].append(by_service(asked.program, models, count, place)[0])
+        rates["command_line"].append(by_command_line(asked.program, model, count, place, 2 * os.cpu_count()))
+        rates["batch"].append(by_batch(asked.program, model, count, place))
+    return {"jobs": count, "processors": os.cpu_count(), **{way: statistics.median(all_of) for way, all_of in rates.items()},
+            "all": rates}
 
 
 def main():
@@ -109,33 +175,20 @@ def main():
     parser.add_argument("--jobs", type=int, default=5000)
     parser.add_argument("--rate", type=float, default=100)
     parser.add_argument("--connections", type=int, default=200)
+    parser.add_argument("--drain", type=float, default=3600, help="seconds to wait for the jobs after the last submit")
+    parser.add_argument("--throughput-jobs", type=int, default=500)
+    parser.add_argument("--repeat", type=int, default=3)
+    parser.add_argument("--parts", default="latency,throughput")
     asked = parser.parse_args()
     with tempfile.TemporaryDirectory() as folder:
         models = pathlib.Path(folder) / "models"
         models.mkdir()
         (models / "K.mtx").write_text(chain_text(), encoding="ascii")
-        process, port = start(asked.program, folder + "/store", models)
-        latencies, errors = submit_open_loop(port, asked.jobs, asked.rate, asked.connections)
-        accepted = time.monotonic()
-        done_then = total(port, "done")
-        while total(port, "queued") + total(port, "running") > 0:
-            time.sleep(0.2)
-        drained = time.monotonic()
-        done, failed = total(port, "done"), total(port, "failed")
-        process.send_signal(signal.SIGTERM)
-        process.wait()
-        plain = by_command_line(asked.program, str(models / "K.mtx"), 200, folder)
-        seconds = asked.jobs / asked.rate
-        result = {
-            "jobs": asked.jobs, "rate": asked.rate, "connections": asked.connections, "errors": errors[:20],
-            "accepted": len(latencies), "done": done, "failed": failed,
-            "submit_ms": {"median": 1e3 * statistics.median(latencies),
-                          "p99": 1e3 * latencies[int(0.99 * len(latencies))], "max": 1e3 * latencies[-1]},
-            "service_jobs_per_second": {"while_submitting": done_then / seconds,
-                                        "afterwards": (done - done_then) / max(drained - accepted, 1e-9)},
-            "command_line_jobs_per_second": plain,
-            "file_system": file_system(folder), "sync": "SQLite WAL, synchronous=FULL; files of a job flushed",
-        }
+        result = {"file_system": file_system(folder), "sync": "SQLite WAL, synchronous=FULL; files of a job flushed"}
+        if "latency" in asked.parts:
+            result["latency"] = latency(asked, models, folder)
+        if "throughput" in asked.parts:
+            result["jobs_per_second"] = throughput(asked, models, folder)
     pathlib.Path(asked.out).mkdir(parents=True, exist_ok=True)
     text = json.dumps(result, indent=1)
     (pathlib.Path(asked.out) / "service.json").write_text(text + "\n", encoding="utf-8")
