@@ -1,6 +1,8 @@
 #include "order/ordering.hpp"
 
 #include <algorithm>
+#include <future>
+#include <system_error>
 #include <vector>
 
 #include "base/digest.hpp"
@@ -162,35 +164,63 @@ std::vector<char> zero_diagonals(const SymmetricMatrix& pattern) {
   return zero;
 }
 
+/// Groups that the structure cannot tell apart, inside the groups that were ordered, and their graph.
+struct ExactStructure {
+  Grouping grouping;
+  Graph graph;
+};
+
+/// work() in a thread of its own if one can be had, else when the result is asked for.
+template <class Work>
+auto begin(bool in_background, const Work& work) {
+  try {
+    return std::async(in_background ? std::launch::async : std::launch::deferred, work);
+  } catch (const std::system_error&) {
+    return std::async(std::launch::deferred, work);
+  }
+}
+
 }  // namespace
 
 Result<Elimination> order_equations(const OrderingInput& input) {
   const SymmetricMatrix& pattern = *input.pattern;
-  const Grouping alike = group_by_neighbourhood(pattern);
   const std::vector<char> zero = zero_diagonals(pattern);
   const bool joins = input.zero_diagonals_join && std::find(zero.begin(), zero.end(), 1) != zero.end();
   const bool nodes_known = !input.node_of.empty();
-  Grouping coarse{alike.groups, alike.group_of.clone()};
-  if (nodes_known) coarse = group_by_node(pattern.rows, input.node_of);
+  const bool coarsens = nodes_known || joins;  // else the graph that is ordered is the exact one
+  Grouping alike, coarse;
+  if (!nodes_known) alike = group_by_neighbourhood(pattern);
+  coarse = nodes_known ? group_by_node(pattern.rows, input.node_of)
+                       : Grouping{alike.groups, alike.group_of.clone()};
   if (joins) coarse = join_zero_diagonals(pattern, std::move(coarse), zero);
 
+  // Eliminate node by node, but keep the exact structure inside a node (a plate's membrane and bending parts):
+  // found by another thread meanwhile, for the first cut of a dissection is one thread's work.
+  std::future<ExactStructure> exact;
+  if (coarsens) {
+    exact = begin(input.threads > 1, [&pattern, &coarse, &alike] {
+      if (alike.group_of.empty()) alike = group_by_neighbourhood(pattern);
+      ExactStructure found{intersect(coarse, alike), {}};
+      found.graph = quotient_graph(pattern, found.grouping);
+      return found;
+    });
+  }
   Elimination elimination;
   Graph coarse_graph = quotient_graph(pattern, coarse);
   const Components components = connected_components(coarse_graph);
   elimination.components = components.count;
   auto coarse_order = order_or_recall(coarse_graph, components, input, elimination);
   if (!coarse_order.ok()) return coarse_order.status();
-  if (!nodes_known && !joins) {
+  if (!coarsens) {
     elimination.graph = std::move(coarse_graph);
     elimination.grouping = std::move(coarse);
     elimination.vertex_at = std::move(*coarse_order);
     elimination.component_of_vertex = components.component_of.clone();
     return elimination;
   }
-  // Eliminate node by node, but keep the exact structure inside a node (a plate's membrane and bending
-  // parts).
-  elimination.grouping = intersect(coarse, alike);
-  elimination.graph = quotient_graph(pattern, elimination.grouping);
+  ExactStructure structure = exact.get();
+  elimination.grouping = std::move(structure.grouping);
+  elimination.graph = std::move(structure.graph);
   const Buffer<Index> coarse_position = inverse_of(*coarse_order);
   Buffer<Index> coarse_of(elimination.grouping.groups);
   for (Index i = 0; i < pattern.rows; ++i) coarse_of[elimination.grouping.group_of[i]] = coarse.group_of[i];

@@ -3,11 +3,14 @@
 #include <algorithm>
 #include <bit>
 #include <cstdint>
+#include <limits>
 #include <numeric>
 #include <vector>
 
 namespace stanchion {
 namespace {
+
+constexpr Offset kNumbersPerRow = 4;  // a table over all node numbers is still small
 
 /// A fixed pseudo-random 64-bit value per equation (the finaliser of a counter-based generator).
 std::uint64_t mix(std::uint64_t x) {
@@ -82,12 +85,23 @@ Grouping group_by_neighbourhood(const SymmetricMatrix& pattern) {
 }
 
 Grouping group_by_node(Index rows, std::span<const Index> node_of) {
-  std::vector<Index> order(static_cast<std::size_t>(rows));
+  const auto count = static_cast<std::size_t>(rows);
+  const Offset numbers = rows == 0 ? 0 : Offset{*std::max_element(node_of.begin(), node_of.end())} + 1;
+  if (numbers <= kNumbersPerRow * rows && numbers + rows <= std::numeric_limits<Index>::max()) {
+    // Node numbers are labels as they are; equations that belong to none get labels of their own above them.
+    std::vector<Index> label(node_of.begin(), node_of.end());
+    auto labels = static_cast<Index>(std::max<Offset>(numbers, 0));
+    for (Index& mine : label) {
+      if (mine < 0) mine = labels++;
+    }
+    return renumber(rows, label, labels);
+  }
+  std::vector<Index> order(count);
   std::iota(order.begin(), order.end(), 0);
   std::stable_sort(order.begin(), order.end(), [&](Index a, Index b) {
     return node_of[static_cast<std::size_t>(a)] < node_of[static_cast<std::size_t>(b)];
   });
-  std::vector<Index> label(static_cast<std::size_t>(rows));
+  std::vector<Index> label(count);
   Index labels = 0;
   for (std::size_t k = 0; k < order.size(); ++k) {
     const Index node = node_of[static_cast<std::size_t>(order[k])];

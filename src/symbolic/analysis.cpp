@@ -1,13 +1,17 @@
 #include "symbolic/analysis.hpp"
 
 #include <algorithm>
+#include <memory>
 #include <new>
 
 #include "base/clock.hpp"
+#include "base/threads.hpp"
 
 namespace stanchion {
 
 namespace {
+
+constexpr Index kSeveralThreadsFrom = 1'000;  // supernodes; fewer are listed while threads start
 
 Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   Analysis analysis;
@@ -20,7 +24,9 @@ Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   analysis.known_order = elimination->known;
   watch.restart();
   const SupernodeTree supernodes = build_supernodes(*elimination);
-  analysis.tree = build_assembly_tree(*elimination, supernodes);
+  std::unique_ptr<ThreadPool> pool;
+  if (workers > 1 && supernodes.supernodes > kSeveralThreadsFrom) pool = std::make_unique<ThreadPool>(workers);
+  analysis.tree = build_assembly_tree(*elimination, supernodes, pool.get());
   analysis.schedule = make_schedule(analysis.tree, workers);
   StructureForecast& forecast = analysis.forecast;
   forecast.factor_entries = supernodes.factor_entries;

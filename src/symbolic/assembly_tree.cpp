@@ -1,12 +1,23 @@
 #include "symbolic/assembly_tree.hpp"
 
 #include <algorithm>
+#include <functional>
+#include <span>
+#include <utility>
 #include <vector>
 
+#include "base/threads.hpp"
 #include "dense/block_lower.hpp"
 
 namespace stanchion {
 namespace {
+
+constexpr Index kSubtreesPerWorker = 8;  // at least so many: they differ in size
+
+/// Where the k-th of `pieces` equal runs of [0, count) begins.
+Index share(Index count, Offset k, int pieces) {
+  return static_cast<Index>(Offset{count} * k / pieces);
+}
 
 /// Supernodes in processing order: at every node the child whose subtree needs most beyond what it leaves
 /// behind goes first.
@@ -57,68 +68,173 @@ std::vector<Index> processing_order(const SupernodeTree& tree) {
   return order;
 }
 
-/// First elimination position of every vertex of the graph, and the numbering of the equations.
-void number_equations(const Elimination& elimination, const SupernodeTree& supernodes,
-                      const std::vector<Index>& order, AssemblyTree& tree, Buffer<Index>& first_of_vertex) {
+/// The vertices of the graph as the fronts eliminate them: front f has [first[f], first[f + 1]).
+struct VertexOrder {
+  Buffer<Index> first;
+  Buffer<Index> vertex_at, place_of;  ///< each the inverse of the other
+  Buffer<Index> first_equation;       ///< elimination position of each place's first equation
+};
+
+VertexOrder number_equations(const Elimination& elimination, const SupernodeTree& supernodes,
+                             const std::vector<Index>& order, AssemblyTree& tree) {
   const Graph& graph = elimination.graph;
-  Index position = 0;
+  VertexOrder vertices{Buffer<Index>(Offset{tree.fronts} + 1), Buffer<Index>(graph.vertices),
+                       Buffer<Index>(graph.vertices), Buffer<Index>(graph.vertices)};
+  Index place = 0, position = 0;
   for (Index f = 0; f < tree.fronts; ++f) {
     tree.first_column[f] = position;
+    vertices.first[f] = place;
     for (const Index k : supernodes.positions[static_cast<std::size_t>(order[static_cast<std::size_t>(f)])]) {
       const Index v = supernodes.vertex_at[k];
-      first_of_vertex[v] = position;
+      vertices.vertex_at[place] = v;
+      vertices.place_of[v] = place;
+      vertices.first_equation[place++] = position;
       position += graph.weight[v];
     }
   }
   tree.first_column[tree.fronts] = position;
-  Buffer<Index> next = first_of_vertex.clone();
+  vertices.first[tree.fronts] = place;
+  Buffer<Index> next = vertices.first_equation.clone();
   for (Index i = 0; i < tree.rows; ++i) {
-    const Index at = next[elimination.grouping.group_of[i]]++;
+    const Index at = next[vertices.place_of[elimination.grouping.group_of[i]]]++;
     tree.position_of[i] = at;
     tree.equation_at[at] = i;
   }
+  return vertices;
 }
 
-/// The vertices below each front, merged from the graph and the children, as ascending positions.
-void list_rows(const Elimination& elimination, const SupernodeTree& supernodes,
-               const std::vector<Index>& order, const Buffer<Index>& first_of_vertex, AssemblyTree& tree) {
-  const Graph& graph = elimination.graph;
-  std::vector<std::vector<Index>> below(static_cast<std::size_t>(tree.fronts));  // vertices
-  std::vector<std::vector<Index>> children(static_cast<std::size_t>(tree.fronts));
-  std::vector<Index> seen(static_cast<std::size_t>(graph.vertices), -1);
-  tree.row_start[0] = 0;
-  std::vector<Index> rows;
+/// Runs of fronts that are whole subtrees, to be worked on apart, and what is left above them.
+struct SubtreeCut {
+  std::vector<std::pair<Index, Index>> subtrees;  ///< [first, end)
+  std::vector<Index> above;                       ///< ascending
+};
+
+SubtreeCut cut_subtrees(const AssemblyTree& tree, Index largest) {
+  std::vector<Index> size(static_cast<std::size_t>(tree.fronts), 1);
   for (Index f = 0; f < tree.fronts; ++f) {
-    auto& mine = below[static_cast<std::size_t>(f)];
-    const Index end = tree.first_column[Offset{f} + 1];
-    const auto add = [&](Index v) {
-      if (first_of_vertex[v] < end || seen[static_cast<std::size_t>(v)] == f) return;
-      seen[static_cast<std::size_t>(v)] = f;
-      mine.push_back(v);
-    };
-    for (const Index k : supernodes.positions[static_cast<std::size_t>(order[static_cast<std::size_t>(f)])]) {
-      const Index v = supernodes.vertex_at[k];
-      for (Offset e = graph.start[v]; e < graph.start[Offset{v} + 1]; ++e) add(graph.adjacency[e]);
-    }
-    for (const Index child : children[static_cast<std::size_t>(f)]) {
-      for (const Index v : below[static_cast<std::size_t>(child)]) add(v);
-      std::vector<Index>().swap(below[static_cast<std::size_t>(child)]);
-    }
-    std::sort(mine.begin(), mine.end(),
-              [&](Index a, Index b) { return first_of_vertex[a] < first_of_vertex[b]; });
-    for (const Index v : mine) {
-      for (Index c = 0; c < graph.weight[v]; ++c) rows.push_back(first_of_vertex[v] + c);
-    }
-    tree.row_start[Offset{f} + 1] = static_cast<Offset>(rows.size());
-    if (tree.parent[f] >= 0) children[static_cast<std::size_t>(tree.parent[f])].push_back(f);
+    if (tree.parent[f] >= 0)
+      size[static_cast<std::size_t>(tree.parent[f])] += size[static_cast<std::size_t>(f)];
   }
-  tree.rows_below = Buffer<Index>(static_cast<Offset>(rows.size()));
-  std::copy(rows.begin(), rows.end(), tree.rows_below.begin());
+  SubtreeCut cut;
+  for (Index f = 0; f < tree.fronts; ++f) {
+    const Index mine = size[static_cast<std::size_t>(f)], up = tree.parent[f];
+    if (mine > largest) {
+      cut.above.push_back(f);
+    } else if (up < 0 || size[static_cast<std::size_t>(up)] > largest) {
+      cut.subtrees.push_back({f + 1 - mine, f + 1});
+    }
+  }
+  return cut;
+}
+
+/// The vertices below each front, as ascending places in the order of elimination.
+class RowLists {
+ public:
+  RowLists(const Elimination& elimination, const VertexOrder& vertices, const AssemblyTree& tree)
+      : graph_(elimination.graph),
+        vertices_(vertices),
+        children_(children_of(tree)),
+        list_of_(static_cast<std::size_t>(tree.fronts)) {}
+
+  /// Lists fronts [first, end), children before parents, into `store`; children outside are listed already.
+  /// `seen` holds a front number a place, -1 at first, and is used by one thread at a time.
+  void list(Index first, Index end, std::vector<Index>& store, std::vector<Index>& seen) {
+    for (Index f = first; f < end; ++f) {
+      const std::size_t start = store.size();
+      const Index behind = vertices_.first[Offset{f} + 1];
+      const auto add = [&](Index place) {
+        if (place < behind || seen[static_cast<std::size_t>(place)] == f) return;
+        seen[static_cast<std::size_t>(place)] = f;
+        store.push_back(place);
+      };
+      for (Index place = vertices_.first[f]; place < behind; ++place) {
+        const Index v = vertices_.vertex_at[place];
+        for (Offset e = graph_.start[v]; e < graph_.start[Offset{v} + 1]; ++e) {
+          add(vertices_.place_of[graph_.adjacency[e]]);
+        }
+      }
+      for (const Index child : children_[static_cast<std::size_t>(f)]) {
+        const List& below = list_of_[static_cast<std::size_t>(child)];
+        for (std::size_t k = below.start; k < below.end; ++k) add((*below.store)[k]);
+      }
+      std::sort(store.begin() + static_cast<std::ptrdiff_t>(start), store.end());
+      list_of_[static_cast<std::size_t>(f)] = {&store, start, store.size()};
+    }
+  }
+
+  /// Equations in the list of a front.
+  Offset equations(Index front) const {
+    Offset sum = 0;
+    for (const Index place : list(front)) sum += weight(place);
+    return sum;
+  }
+
+  /// Writes their elimination positions.
+  void write(Index front, Index* positions) const {
+    for (const Index place : list(front)) {
+      for (Index c = 0; c < weight(place); ++c) *positions++ = vertices_.first_equation[place] + c;
+    }
+  }
+
+ private:
+  struct List {
+    const std::vector<Index>* store = nullptr;
+    std::size_t start = 0, end = 0;
+  };
+
+  std::span<const Index> list(Index front) const {
+    const List& mine = list_of_[static_cast<std::size_t>(front)];
+    return {mine.store->data() + mine.start, mine.end - mine.start};
+  }
+  Index weight(Index place) const { return graph_.weight[vertices_.vertex_at[place]]; }
+
+  const Graph& graph_;
+  const VertexOrder& vertices_;
+  std::vector<std::vector<Index>> children_;
+  std::vector<List> list_of_;
+};
+
+/// Fills the row lists of the tree, subtrees apart in several threads where a pool is given.
+void list_rows(const Elimination& elimination, const VertexOrder& vertices, ThreadPool* pool,
+               AssemblyTree& tree) {
+  const int workers = pool == nullptr ? 1 : pool->size();
+  const SubtreeCut cut = cut_subtrees(tree, tree.fronts / (kSubtreesPerWorker * workers));
+  RowLists lists(elimination, vertices, tree);
+  std::vector<std::vector<Index>> store(cut.subtrees.size() + 1), seen(static_cast<std::size_t>(workers));
+  const auto for_all = [&](Offset pieces, const std::function<void(Offset, int)>& work) {
+    if (pool != nullptr) return pool->run(pieces, work);
+    for (Offset k = 0; k < pieces; ++k) work(k, 0);
+  };
+  const auto list = [&](Index first, Index end, std::size_t piece, int worker) {
+    auto& mine = seen[static_cast<std::size_t>(worker)];
+    mine.resize(static_cast<std::size_t>(elimination.graph.vertices), -1);
+    lists.list(first, end, store[piece], mine);
+  };
+  for_all(static_cast<Offset>(cut.subtrees.size()), [&](Offset k, int worker) {
+    const auto [first, end] = cut.subtrees[static_cast<std::size_t>(k)];
+    list(first, end, static_cast<std::size_t>(k), worker);
+  });
+  for (const Index f : cut.above) list(f, f + 1, cut.subtrees.size(), 0);
+
+  for_all(workers, [&](Offset k, int) {
+    for (Index f = share(tree.fronts, k, workers); f < share(tree.fronts, k + 1, workers); ++f) {
+      tree.row_start[Offset{f} + 1] = lists.equations(f);
+    }
+  });
+  tree.row_start[0] = 0;
+  for (Index f = 0; f < tree.fronts; ++f) tree.row_start[Offset{f} + 1] += tree.row_start[f];
+  tree.rows_below = Buffer<Index>(tree.row_start[tree.fronts]);
+  for_all(workers, [&](Offset k, int) {
+    for (Index f = share(tree.fronts, k, workers); f < share(tree.fronts, k + 1, workers); ++f) {
+      lists.write(f, tree.rows_below.data() + tree.row_start[f]);
+    }
+  });
 }
 
 }  // namespace
 
-AssemblyTree build_assembly_tree(const Elimination& elimination, const SupernodeTree& supernodes) {
+AssemblyTree build_assembly_tree(const Elimination& elimination, const SupernodeTree& supernodes,
+                                 ThreadPool* pool) {
   const auto rows = static_cast<Index>(elimination.grouping.group_of.size());
   const Index fronts = supernodes.supernodes;
   AssemblyTree tree;
@@ -142,9 +258,8 @@ AssemblyTree build_assembly_tree(const Elimination& elimination, const Supernode
     tree.component[f] =
         elimination.component_of_vertex[supernodes.vertex_at[supernodes.positions[s].front()]];
   }
-  Buffer<Index> first_of_vertex(elimination.graph.vertices);
-  number_equations(elimination, supernodes, order, tree, first_of_vertex);
-  list_rows(elimination, supernodes, order, first_of_vertex, tree);
+  const VertexOrder vertices = number_equations(elimination, supernodes, order, tree);
+  list_rows(elimination, vertices, pool, tree);
   return tree;
 }
 

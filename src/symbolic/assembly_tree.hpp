@@ -6,6 +6,8 @@
 
 namespace stanchion {
 
+class ThreadPool;
+
 /// Fronts numbered in processing order: a postorder whose children are sorted to keep the stack of
 /// contribution blocks low (Liu, ACM TOMS 12 (1986)). Positions are equations in elimination order.
 ///
@@ -34,7 +36,9 @@ struct AssemblyTree {
 /// The children of every front, in processing order.
 std::vector<std::vector<Index>> children_of(const AssemblyTree& tree);
 
-/// Cost: linear in the row lists and the graph, plus sorting the lists.
-AssemblyTree build_assembly_tree(const Elimination& elimination, const SupernodeTree& supernodes);
+/// Cost: linear in the row lists and the graph, plus sorting the lists. Where a pool is given its threads list
+/// the rows; the tree is the same.
+AssemblyTree build_assembly_tree(const Elimination& elimination, const SupernodeTree& supernodes,
+                                 ThreadPool* pool = nullptr);
 
 }  // namespace stanchion

@@ -2,6 +2,7 @@
 
 #include <gtest/gtest.h>
 
+#include <limits>
 #include <set>
 
 #include "order/brute_force.hpp"
@@ -68,10 +69,13 @@ TEST(GroupByNeighbourhood, BlocksOfANodeBecomeOneVertex) {
 
 TEST(GroupByNode, SharesAGroupExactlyWithinANode) {
   Random random(3);
-  for (int round = 0; round < 20; ++round) {
-    const Index n = 1 + round * 7;
+  for (int round = 0; round < 60; ++round) {
+    const Index n = 1 + round * 3;
+    // Numbers close together are looked up, others sorted; some are negative: no node. All, in some rounds.
+    const Index spread = round % 3 == 0 ? 1000 : 1, lowest = round % 10 == 9 ? 12 : 2;
     std::vector<Index> node(static_cast<std::size_t>(n));
-    for (Index& v : node) v = static_cast<Index>(random() % 12) * 1000 - 2000;  // some negative: no node
+    for (Index& v : node) v = (static_cast<Index>(random() % 12) - lowest) * spread;
+    if (round % 7 == 6) node.back() = std::numeric_limits<Index>::max();
     const Grouping grouping = group_by_node(n, node);
     expect_numbered_by_first_appearance(grouping);
     for (Index i = 0; i < n; ++i) {
