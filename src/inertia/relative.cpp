@@ -5,11 +5,13 @@
 #include <cmath>
 #include <new>
 #include <numeric>
+#include <span>
 #include <tuple>
 #include <vector>
 
 #include "base/clock.hpp"
 #include "base/counter_random.hpp"
+#include "base/ranges.hpp"
 #include "numeric/block_solve.hpp"
 #include "numeric/extended_product.hpp"
 
@@ -58,10 +60,10 @@ PivotRoot root_of(const FactorFront& front, Index k) {
   return result;
 }
 
-/// Visits every pivot with its rows (positions) in elimination order.
+/// Visits every pivot of some fronts with its rows (positions) in elimination order.
 template <class Visit>
-void each_pivot(const Factor& factor, const Visit& visit) {
-  for (const FactorFront& front : factor.fronts) {
+void each_pivot(std::span<const FactorFront> fronts, const Visit& visit) {
+  for (const FactorFront& front : fronts) {
     for (Index k = 0; k < front.pivots; ++k) {
       const PivotRoot root = root_of(front, k);
       visit(root, front.position[k], root.pair ? front.position[k + 1] : Index{-1});
@@ -77,10 +79,26 @@ double larger(double most, double size) {
   return size > most ? size : most;
 }
 
-Norms column_norms(const std::vector<double>& block) {
+/// Eight vectors, kV numbers a row.
+using Block = Buffer<double>;
+
+constexpr Offset kRowsAPiece = 4096;   ///< of a block, for one thread
+constexpr Offset kFrontsAPiece = 256;  ///< likewise
+
+/// Summed piece by piece: the same for any number of threads.
+Norms column_norms(const Block& block, ThreadPool& pool) {
+  const Offset rows = block.size() / kV;
+  std::vector<Norms> partial(static_cast<std::size_t>(rows / kRowsAPiece + 1), Norms{});
+  for_ranges(pool, rows, kRowsAPiece, [&](Offset begin, Offset end) {
+    Norms sums{};
+    for (Offset i = begin * kV; i < end * kV; i += kV) {
+      for (Index v = 0; v < kV; ++v) sums[static_cast<std::size_t>(v)] += block[i + v] * block[i + v];
+    }
+    partial[static_cast<std::size_t>(begin / kRowsAPiece)] = sums;
+  });
   Norms sums{};
-  for (std::size_t i = 0; i < block.size(); i += kV) {
-    for (std::size_t v = 0; v < kV; ++v) sums[v] += block[i + v] * block[i + v];
+  for (const Norms& some : partial) {
+    for (std::size_t v = 0; v < kV; ++v) sums[v] += some[v];
   }
   for (double& s : sums) s = std::sqrt(s) * 1.000001;
   return sums;
@@ -96,7 +114,9 @@ class RelativeTest {
         factor_(*factorization.factor),
         pool_(pool),
         solver_(analysis, factor_, pool),
-        rows_(static_cast<std::size_t>(factor_.rows)) {}
+        input_(Offset{factor_.rows} * kV),
+        y_(Offset{factor_.rows} * kV),
+        v_(Offset{factor_.rows} * kV) {}
 
   RelativeResult run(double failure, std::uint64_t key) {
     RelativeResult result;
@@ -107,14 +127,13 @@ class RelativeTest {
     const double events = second_ != nullptr ? 3 : 2;  // the norms of M^-1 and of F, and of M^-1 B M^-T
     const double g = small_ball(failure / events, kV);
     draw(key);
-    data_ = absolute_norm(matrix_);
+    data_ = absolute_norm(matrix_, pool_);
     gamma_ = 1.01 * kUnit * (solver_.longest_path() + 16);
     m_norm_ = std::sqrt(root_growth());  // || |M| ||_2
-    std::vector<double> v = gaussian_;
     Norms noise{};
     for (int step = 1; step <= kMostPowerSteps; ++step) {
-      if (!apply_error(v, g, noise, step == 1 ? &result : nullptr)) return result;
-      judge(result, g, step, column_norms(v), noise);
+      if (!apply_error(g, noise, step == 1 ? &result : nullptr)) return result;
+      judge(result, g, step, column_norms(v_, pool_), noise);
       // More steps pay only while what was measured, not what rounding may hide, is in the way.
       if (result.certified || !(result.transposed_part + result.residual_part < 0.25)) return result;
     }
@@ -131,7 +150,7 @@ class RelativeTest {
       }
     }
     if (zero_pivot_) return;
-    each_pivot(factor_, [&](const PivotRoot& root, Index, Index second) {
+    each_pivot(factor_.fronts, [&](const PivotRoot& root, Index, Index second) {
       for (int s = 0; s < (second < 0 ? 1 : 2); ++s) ++(root.sign[s] < 0 ? result.negative : result.positive);
     });
   }
@@ -156,31 +175,42 @@ class RelativeTest {
     return pair_spread_ > 0 ? 1.7 * (1 + pair_spread_) * growth : growth;
   }
 
+  /// v := w, Gaussian.
   void draw(std::uint64_t key) {
     const CounterRandom random(key);
-    gaussian_.resize(rows_ * kV);
-    constexpr std::size_t kChunk = 8192;
-    pool_.run(static_cast<Offset>((gaussian_.size() + kChunk - 1) / kChunk), [&](Offset piece, int) {
-      const std::size_t begin = static_cast<std::size_t>(piece) * kChunk;
-      for (std::size_t k = begin; k < std::min(begin + kChunk, gaussian_.size()); k += 2) {
-        std::tie(gaussian_[k], gaussian_[k + 1]) = random.gaussians(k / 2);
+    for_ranges(pool_, v_.size(), kRowsAPiece * kV, [&](Offset begin, Offset end) {
+      for (Offset k = begin; k < end; k += 2) {
+        std::tie(v_[k], v_[k + 1]) = random.gaussians(static_cast<std::uint64_t>(k / 2));
       }
     });
   }
 
-  double* row(std::vector<double>& block, Index position) { return block.data() + Offset{position} * kV; }
+  /// Visits every pivot, fronts apart in all threads.
+  template <class Visit>
+  void each_pivot_by_all(const Visit& visit) {
+    const std::span<const FactorFront> fronts(factor_.fronts);
+    for_ranges(pool_, static_cast<Offset>(fronts.size()), kFrontsAPiece, [&](Offset begin, Offset end) {
+      each_pivot(fronts.subspan(static_cast<std::size_t>(begin), static_cast<std::size_t>(end - begin)),
+                 visit);
+    });
+  }
+
+  static double* row(Block& block, Index position) { return block.data() + Offset{position} * kV; }
 
   /// v := F v. Adds the bounds 2 ||h|| + beta ||rho|| + rounding of v to `noise`. The first call (v = w,
   /// `first` not null) also settles beta, and the exclusion radius where one is asked. False when nothing
   /// follows.
-  bool apply_error(std::vector<double>& v, double g, Norms& noise, RelativeResult* first) {
-    const std::vector<double> input = v;
-    std::vector<double> y = transposed_solve(input);
-    const Norms y_norm = column_norms(y);
-    extended_times(matrix_, y.data(), v.data(), pool_);
-    const Norms b_norm = column_norms(v);
-    solve(v);
-    const Norms z_norm = column_norms(v);
+  bool apply_error(double g, Norms& noise, RelativeResult* first) {
+    for_ranges(pool_, v_.size(), kRowsAPiece * kV, [&](Offset begin, Offset end) {
+      std::copy(v_.data() + begin, v_.data() + end, input_.data() + begin);
+      std::copy(v_.data() + begin, v_.data() + end, y_.data() + begin);
+    });
+    transposed_solve(y_);
+    const Norms y_norm = column_norms(y_, pool_);
+    extended_times(matrix_, y_.data(), v_.data(), pool_);
+    const Norms b_norm = column_norms(v_, pool_);
+    solve(v_);
+    const Norms z_norm = column_norms(v_, pool_);
     if (first != nullptr) {
       const double y_most = std::accumulate(y_norm.begin(), y_norm.end(), 0.0, larger);
       h_most_ = gamma_ * m_norm_ * y_most;
@@ -188,8 +218,8 @@ class RelativeTest {
       beta_ = y_most / (g - h_most_);
       first->inverse_norm = beta_ * (1 + 1e-12);
     }
-    combine(v, input);
-    const Norms v_norm = column_norms(v);
+    subtract_signed(v_, input_);
+    const Norms v_norm = column_norms(v_, pool_);
     const double product_error = data_.product_error();
     double transposed = 0, residual = 0;
     for (std::size_t i = 0; i < kV; ++i) {
@@ -203,19 +233,19 @@ class RelativeTest {
     if (first != nullptr) {
       first->transposed_part = transposed / g;
       first->residual_part = residual / g;
-      if (second_ != nullptr) second_norm_ = bound_second(y, y_norm, g);
+      if (second_ != nullptr) second_norm_ = bound_second(y_norm, g);
     }
     return true;
   }
 
-  /// b >= ||M^-1 B M^-T||, B the second matrix, from the y at hand: one product and one solve more.
-  double bound_second(const std::vector<double>& y, const Norms& y_norm, double g) {
-    std::vector<double> u(y.size());
-    extended_times(*second_, y.data(), u.data(), pool_);
-    const Norms b_norm = column_norms(u);
-    solve(u);
-    const Norms u_norm = column_norms(u);
-    const AbsoluteNorm size = absolute_norm(*second_);
+  /// b >= ||M^-1 B M^-T||, B the second matrix, from the y at hand: one product and one solve more. The
+  /// input's place is free.
+  double bound_second(const Norms& y_norm, double g) {
+    extended_times(*second_, y_.data(), input_.data(), pool_);
+    const Norms b_norm = column_norms(input_, pool_);
+    solve(input_);
+    const Norms u_norm = column_norms(input_, pool_);
+    const AbsoluteNorm size = absolute_norm(*second_, pool_);
     double most = 0;
     for (std::size_t i = 0; i < kV; ++i) {
       const double rho = 1.01 * kUnit * b_norm[i] + gamma_ * m_norm_ * u_norm[i] +
@@ -225,10 +255,9 @@ class RelativeTest {
     return most / (g - h_most_) * 1.001;
   }
 
-  /// y = M^-T w: T^-T, then L^-T.
-  std::vector<double> transposed_solve(const std::vector<double>& w) {
-    std::vector<double> y = w;
-    each_pivot(factor_, [&](const PivotRoot& root, Index first, Index second) {
+  /// y := M^-T y: T^-T, then L^-T.
+  void transposed_solve(Block& y) {
+    each_pivot_by_all([&](const PivotRoot& root, Index first, Index second) {
       double* f = row(y, first);
       if (!root.pair) {
         for (Index v = 0; v < kV; ++v) f[v] *= root.inverse;
@@ -242,13 +271,12 @@ class RelativeTest {
       }
     });
     solver_.backward(y.data());
-    return y;
   }
 
   /// z = M^-1 b in place: L^-1, then T^-1.
-  void solve(std::vector<double>& z) {
+  void solve(Block& z) {
     solver_.forward(z.data());
-    each_pivot(factor_, [&](const PivotRoot& root, Index first, Index second) {
+    each_pivot_by_all([&](const PivotRoot& root, Index first, Index second) {
       double* f = row(z, first);
       if (!root.pair) {
         for (Index v = 0; v < kV; ++v) f[v] *= root.inverse;
@@ -264,13 +292,13 @@ class RelativeTest {
   }
 
   /// z := z - J w.
-  void combine(std::vector<double>& z, const std::vector<double>& w) {
+  void subtract_signed(Block& z, const Block& w) {
     const auto subtract = [&](Index position, double sign) {
       double* to = row(z, position);
       const double* from = w.data() + Offset{position} * kV;
       for (Index v = 0; v < kV; ++v) to[v] -= sign * from[v];
     };
-    each_pivot(factor_, [&](const PivotRoot& root, Index first, Index second) {
+    each_pivot_by_all([&](const PivotRoot& root, Index first, Index second) {
       subtract(first, root.sign[0]);
       if (second >= 0) subtract(second, root.sign[1]);
     });
@@ -296,8 +324,7 @@ class RelativeTest {
   const Factor& factor_;
   ThreadPool& pool_;
   BlockSolver solver_;
-  std::size_t rows_;
-  std::vector<double> gaussian_;
+  Block input_, y_, v_;
   bool zero_pivot_ = false;
   AbsoluteNorm data_;
   double gamma_ = 0, m_norm_ = 0, beta_ = 0, h_most_ = 0, second_norm_ = 0;

@@ -83,7 +83,7 @@ std::optional<NegativeDirection> find_negative_direction(const Analysis& analysi
   }
   BlockSolver(analysis, factor, pool).backward(x.data());
   extended_times(matrix, x.data(), b.data(), pool);
-  const AbsoluteNorm norm = absolute_norm(matrix);
+  const AbsoluteNorm norm = absolute_norm(matrix, pool);
   std::optional<NegativeDirection> best;
   double best_quotient = 0;
   for (std::size_t v = 0; v < candidates.size(); ++v) {

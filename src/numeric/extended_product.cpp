@@ -5,11 +5,14 @@
 #include <cmath>
 #include <vector>
 
+#include "base/ranges.hpp"
+
 namespace stanchion {
 namespace {
 
-constexpr auto kV = static_cast<std::size_t>(kBlockVectors);
-constexpr Index kRanges = 2;  ///< column ranges, each with sums of its own
+constexpr Index kV = kBlockVectors;
+constexpr Index kRanges = 2;          ///< column ranges, each with sums of its own
+constexpr Offset kRowsAPiece = 4096;  ///< of a block, for one thread
 
 /// Column ranges with about the same number of entries; the same whatever the number of threads.
 std::array<Index, kRanges + 1> equal_ranges(const MatrixFamily& family) {
@@ -38,57 +41,78 @@ struct Joined {
 
 void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, ThreadPool& pool) {
   const MatrixFamily& family = *matrix.family;
-  const auto size = static_cast<std::size_t>(family.rows) * kV;
-  std::vector<double> scaled(size);
-  for (std::size_t k = 0; k < size; ++k) scaled[k] = y[k] * (*matrix.scale)[static_cast<Offset>(k / kV)];
+  const Buffer<double>& scales = *matrix.scale;
+  const Offset size = Offset{family.rows} * kV;
+  Buffer<double> scaled(size);
+  for_ranges(pool, family.rows, kRowsAPiece, [&](Offset begin, Offset end) {
+    for (Offset k = begin * kV; k < end * kV; ++k) scaled[k] = y[k] * scales[k / kV];
+  });
   std::vector<const double*> members;
   for (const Buffer<double>& values : family.values) members.push_back(values.data());
   const DataColumns data{family.column_start.data(), family.row.data(), members.data(),
                          matrix.coefficients.data(), static_cast<Index>(members.size())};
-  std::array<std::vector<double>, kRanges> high, low;
+  std::array<Buffer<double>, kRanges> high, low;
   const std::array<Index, kRanges + 1> ends = equal_ranges(family);
   pool.run(kRanges, [&](Offset range, int) {
     const auto r = static_cast<std::size_t>(range);
-    high[r].assign(size, 0.0);
-    low[r].assign(size, 0.0);
+    high[r] = Buffer<double>(size, 0.0);
+    low[r] = Buffer<double>(size, 0.0);
     block_kernels().extended_product(data, ends[r], ends[r + 1], scaled.data(), high[r].data(),
                                      low[r].data());
   });
-  for (std::size_t k = 0; k < size; ++k) {
-    const double scale = (*matrix.scale)[static_cast<Offset>(k / kV)];
-    Joined sum{high[0][k] * scale, low[0][k] * scale};
-    sum.add(high[1][k] * scale);
-    sum.tail += low[1][k] * scale;
-    const double shift = matrix.offset * y[k];
-    sum.add(-shift);
-    sum.tail -= std::fma(matrix.offset, y[k], -shift);
-    b[k] = sum.head + sum.tail;
-  }
+  for_ranges(pool, family.rows, kRowsAPiece, [&](Offset begin, Offset end) {
+    for (Offset k = begin * kV; k < end * kV; ++k) {
+      const double scale = scales[k / kV];
+      Joined sum{high[0][k] * scale, low[0][k] * scale};
+      sum.add(high[1][k] * scale);
+      sum.tail += low[1][k] * scale;
+      const double shift = matrix.offset * y[k];
+      sum.add(-shift);
+      sum.tail -= std::fma(matrix.offset, y[k], -shift);
+      b[k] = sum.head + sum.tail;
+    }
+  });
 }
 
-AbsoluteNorm absolute_norm(const ShiftedMatrix& matrix) {
+AbsoluteNorm absolute_norm(const ShiftedMatrix& matrix, ThreadPool& pool) {
   const MatrixFamily& family = *matrix.family;
-  const auto rows = static_cast<std::size_t>(family.rows);
-  std::vector<double> sums(rows, std::fabs(matrix.offset));
-  std::vector<Offset> terms(rows, 0);
-  for (Index j = 0; j < family.rows; ++j) {
-    for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-      double size = 0;
-      for (std::size_t t = 0; t < matrix.coefficients.size(); ++t) {
-        size += std::fabs(matrix.coefficients[t] * family.values[t][k]);
+  if (family.rows == 0) return {};
+  const Buffer<double>& scales = *matrix.scale;
+  struct Row {
+    double sum;
+    Offset terms;
+  };
+  std::array<Buffer<Row>, kRanges> parts;
+  const std::array<Index, kRanges + 1> ends = equal_ranges(family);
+  pool.run(kRanges, [&](Offset range, int) {
+    const auto r = static_cast<std::size_t>(range);
+    parts[r] = Buffer<Row>(family.rows, Row{0, 0});
+    for (Index j = ends[r]; j < ends[r + 1]; ++j) {
+      for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
+        double size = 0;
+        for (std::size_t t = 0; t < matrix.coefficients.size(); ++t) {
+          size += std::fabs(matrix.coefficients[t] * family.values[t][k]);
+        }
+        const Index i = family.row[k];
+        size *= scales[i] * scales[j];
+        parts[r][i].sum += size;
+        ++parts[r][i].terms;
+        if (i == j) continue;
+        parts[r][j].sum += size;
+        ++parts[r][j].terms;
       }
-      const Index i = family.row[k];
-      size *= (*matrix.scale)[i] * (*matrix.scale)[j];
-      sums[static_cast<std::size_t>(i)] += size;
-      ++terms[static_cast<std::size_t>(i)];
-      if (i == j) continue;
-      sums[static_cast<std::size_t>(j)] += size;
-      ++terms[static_cast<std::size_t>(j)];
     }
+  });
+  AbsoluteNorm most{0, 0, static_cast<Index>(matrix.coefficients.size())};
+  for (Index i = 0; i < family.rows; ++i) {
+    double sum = std::fabs(matrix.offset);
+    Offset terms = 0;
+    for (const Buffer<Row>& part : parts) sum += part[i].sum, terms += part[i].terms;
+    most.norm = std::max(most.norm, sum);
+    most.longest_row = std::max(most.longest_row, terms);
   }
-  if (rows == 0) return {};
-  return {*std::max_element(sums.begin(), sums.end()) * 1.001, *std::max_element(terms.begin(), terms.end()),
-          static_cast<Index>(matrix.coefficients.size())};
+  most.norm *= 1.001;
+  return most;
 }
 
 }  // namespace stanchion

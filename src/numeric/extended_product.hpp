@@ -25,6 +25,6 @@ struct AbsoluteNorm {
     return 8 * static_cast<double>(longest_row + members + 8) * 0x1p-106 * norm;
   }
 };
-AbsoluteNorm absolute_norm(const ShiftedMatrix& matrix);
+AbsoluteNorm absolute_norm(const ShiftedMatrix& matrix, ThreadPool& pool);
 
 }  // namespace stanchion

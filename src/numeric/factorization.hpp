@@ -4,9 +4,11 @@
 #include <algorithm>
 #include <cstdint>
 #include <optional>
+#include <span>
 #include <vector>
 
 #include "base/cancellation.hpp"
+#include "base/page_store.hpp"
 #include "base/threads.hpp"
 #include "dense/kernels.hpp"
 #include "sparse/matrix_family.hpp"
@@ -27,11 +29,11 @@ struct FactorOptions {
 };
 
 /// One eliminated front: L (order x pivots, column-major, unit lower trapezoid), D, and the equations by
-/// position. L is held in one of two precisions; the other buffer is empty.
+/// position. L is held in one of two precisions; the other span is empty.
 struct FactorFront {
   Index pivots = 0, order = 0;
-  Buffer<double> lower;
-  Buffer<float> lower_single;
+  std::span<double> lower;
+  std::span<float> lower_single;
 
   /// Calls `use` with L's entries, whichever precision they have.
   template <class Use>
@@ -42,15 +44,16 @@ struct FactorFront {
       use(lower_single.data());
     }
   }
-  Buffer<double> diagonal, off_diagonal;
-  Buffer<PivotKind> kind;
-  Buffer<Index> position;  ///< of every row of the front
+  std::span<double> diagonal, off_diagonal;
+  std::span<PivotKind> kind;
+  std::span<Index> position;  ///< of every row of the front
 };
 
 /// P A P^T = L D L^T + E. In processing order: a front's rows are pivots of itself or of later fronts.
 struct Factor {
   Index rows = 0;
   std::vector<FactorFront> fronts;
+  std::vector<PageStore> memory;  ///< what the fronts point into
 };
 
 /// Signs of the pivots of one connected part; exact for L D L^T (Sylvester).

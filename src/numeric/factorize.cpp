@@ -147,9 +147,11 @@ class Factorizer {
     }
   }
 
-  /// Adds a worker's counts to the result and lets it go.
+  /// Adds a worker's counts to the result, takes over what it kept, and lets it go.
   static void collect(Factorization& result, std::unique_ptr<FrontWorker>& worker) {
-    if (worker) result.collect(*worker);
+    if (!worker) return;
+    result.collect(*worker);
+    if (result.factor) result.factor->memory.push_back(std::move(worker->kept_memory));
     worker.reset();
   }
 

@@ -185,14 +185,14 @@ Status FrontWorker::keep_panel(const FrontRows& rows, const BlockLower& matrix, 
     return run_.memory.limit_reached();
   }
   if (single) {
-    kept.lower_single = Buffer<float>(entries);
+    kept.lower_single = kept_memory.take<float>(entries);
   } else {
-    kept.lower = Buffer<double>(entries);
+    kept.lower = kept_memory.take<double>(entries);
   }
-  kept.diagonal = Buffer<double>(eliminated);
-  kept.off_diagonal = Buffer<double>(eliminated);
-  kept.kind = Buffer<PivotKind>(eliminated);
-  kept.position = Buffer<Index>(rows.order);
+  kept.diagonal = kept_memory.take<double>(eliminated);
+  kept.off_diagonal = kept_memory.take<double>(eliminated);
+  kept.kind = kept_memory.take<PivotKind>(eliminated);
+  kept.position = kept_memory.take<Index>(rows.order);
   std::copy_n(label_.begin(), rows.order, kept.position.begin());
   for (Index k = 0; k < eliminated; ++k) {
     const double* source = matrix.column(k, k) - k;
@@ -207,9 +207,10 @@ Status FrontWorker::keep_panel(const FrontRows& rows, const BlockLower& matrix, 
     } else {
       store(kept.lower.data() + Offset{k} * rows.order);
     }
-    kept.diagonal[k] = diagonal_[static_cast<std::size_t>(k)];
-    kept.off_diagonal[k] = off_diagonal_[static_cast<std::size_t>(k)];
-    kept.kind[k] = kind_[static_cast<std::size_t>(k)];
+    const auto at = static_cast<std::size_t>(k);
+    kept.diagonal[at] = diagonal_[at];
+    kept.off_diagonal[at] = off_diagonal_[at];
+    kept.kind[at] = kind_[at];
   }
   return {};
 }

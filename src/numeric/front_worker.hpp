@@ -63,7 +63,8 @@ class FrontWorker {
   double largest_row_error = 0;
   Offset delayed_pivots = 0, two_by_two_pivots = 0;
   bool stopped = false, breakdown = false;
-  Index fault_row = -1;  ///< first in elimination order; negative: none
+  Index fault_row = -1;   ///< first in elimination order; negative: none
+  PageStore kept_memory;  ///< of the panels that are kept
 
  private:
   Status assemble(const FrontRows& rows, const BlockLower& matrix, ThreadPool* team);

@@ -194,8 +194,8 @@ Result<Elimination> order_equations(const OrderingInput& input) {
                        : Grouping{alike.groups, alike.group_of.clone()};
   if (joins) coarse = join_zero_diagonals(pattern, std::move(coarse), zero);
 
-  // Eliminate node by node, but keep the exact structure inside a node (a plate's membrane and bending parts):
-  // found by another thread meanwhile, for the first cut of a dissection is one thread's work.
+  // Eliminate node by node, but keep the exact structure inside a node (a plate's membrane and bending
+  // parts): found by another thread meanwhile, for the first cut of a dissection is one thread's work.
   std::future<ExactStructure> exact;
   if (coarsens) {
     exact = begin(input.threads > 1, [&pattern, &coarse, &alike] {

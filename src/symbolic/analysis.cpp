@@ -25,7 +25,8 @@ Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   watch.restart();
   const SupernodeTree supernodes = build_supernodes(*elimination);
   std::unique_ptr<ThreadPool> pool;
-  if (workers > 1 && supernodes.supernodes > kSeveralThreadsFrom) pool = std::make_unique<ThreadPool>(workers);
+  if (workers > 1 && supernodes.supernodes > kSeveralThreadsFrom)
+    pool = std::make_unique<ThreadPool>(workers);
   analysis.tree = build_assembly_tree(*elimination, supernodes, pool.get());
   analysis.schedule = make_schedule(analysis.tree, workers);
   StructureForecast& forecast = analysis.forecast;

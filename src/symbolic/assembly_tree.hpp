@@ -36,8 +36,8 @@ struct AssemblyTree {
 /// The children of every front, in processing order.
 std::vector<std::vector<Index>> children_of(const AssemblyTree& tree);
 
-/// Cost: linear in the row lists and the graph, plus sorting the lists. Where a pool is given its threads list
-/// the rows; the tree is the same.
+/// Cost: linear in the row lists and the graph, plus sorting the lists. Where a pool is given its threads
+/// list the rows; the tree is the same.
 AssemblyTree build_assembly_tree(const Elimination& elimination, const SupernodeTree& supernodes,
                                  ThreadPool* pool = nullptr);
 
