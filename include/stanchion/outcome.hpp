@@ -223,6 +223,13 @@ struct InputRecord {
   std::optional<double> factor;  ///< for "added"
 };
 
+/// A file beside the matrices: names, places, lists.
+struct TableRecord {
+  std::string role;  ///< "dofs", "nodes", "axes", "fix", "multipliers" or "values"
+  std::string path;
+  std::string sha256;
+};
+
 struct Timings {
   double read = 0, order = 0, analyse = 0, factor = 0, certify = 0, total = 0;
 };
@@ -261,6 +268,7 @@ struct Outcome {
   std::string command;
   std::vector<std::string> arguments;
   std::vector<InputRecord> inputs;
+  std::vector<TableRecord> tables;
   HostRecord host;
   Index rows_analysed = 0;
   Index rows_struck = 0;  ///< equations removed before analysis (fixed or held dofs)

@@ -53,6 +53,11 @@ struct Evidence {
   bool is_multiplier(Index row) const {
     return s.kind[static_cast<std::size_t>(row)] == DofKind::kMultiplier;
   }
+  /// No diagonal, but acting on others: what a multiplier that nobody listed looks like.
+  bool looks_like_multiplier(Index row) const {
+    const auto i = static_cast<std::size_t>(row);
+    return !is_multiplier(row) && s.diagonal[i] == 0 && s.empty[i] == 0;
+  }
   Index part_of_row(Index row) const {
     return s.part_of[static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(row)])];
   }

@@ -75,9 +75,10 @@ std::string note_of(const PartsJudged& parts, std::size_t held) {
   const auto add = [&note](const std::string& text) { note += (note.empty() ? "" : " ") + text; };
   if (held > 0) {
     add(fmt::format(
-        "{} held for this, each at one equation that it moves: along a zero direction no digit is "
-        "left, and the figures are those of the structure so held.",
-        held == 1 ? "The zero direction is" : fmt::format("{} zero directions are", held)));
+        "{} at one equation that it moves: along a zero direction no digit is left, and the figures are "
+        "those of the structure so held.",
+        held == 1 ? "The zero direction is held for this,"
+                  : fmt::format("{} zero directions are held for this, each", held)));
   }
   if (parts.negative > 0) {
     add(fmt::format(
@@ -113,7 +114,7 @@ void judge_local_accuracy(Evidence& e) {
   const std::vector<double> digits = estimate(e, parts.judged, held);
   e.out.accuracy_note = note_of(parts, held.rows().size());
   LocalAccuracy accuracy;
-  accuracy.method = "Estimate from Gaussian vectors";
+  accuracy.method = "estimated with Gaussian vectors";
   accuracy.vectors = kVectors;
   accuracy.attention = e.in.options.attention_digits;
   accuracy.alarm = e.in.options.alarm_digits;

@@ -95,6 +95,7 @@ class BundleNamer {
       direction.cause = Cause::kNearMechanism;
     } else {
       direction.cause = cause_of(bundle, share, moving, facts);
+      if (facts.rigid && !facts.pattern && !bundle.whole_part) facts.hangs = at_rest_beside(bundle);
     }
     e_.add(std::move(direction), std::move(facts));
   }
@@ -114,7 +115,8 @@ class BundleNamer {
   double of_multipliers(const LocalVectors& moving, const std::vector<double>& share) const {
     double sum = 0;
     for (std::size_t i = 0; i < moving.rows.size(); ++i) {
-      if (s_.kind[static_cast<std::size_t>(moving.rows[i])] == DofKind::kMultiplier) sum += share[i];
+      const Index row = moving.rows[i];
+      if (e_.is_multiplier(row) || e_.looks_like_multiplier(row)) sum += share[i];
     }
     return sum;
   }
@@ -135,9 +137,37 @@ class BundleNamer {
         static_cast<Index>(bundle.nodes.size()) == s_.part_nodes[static_cast<std::size_t>(bundle.part)];
     if (!bundle.chain && (!s_.placed || !has_displacements(bundle)) && everywhere && count <= 6) {
       facts.by_connectivity = facts.whole_part = true;
+      facts.displacements = has_displacements(bundle);
       return Cause::kLoosePart;
     }
     return Cause::kMechanism;
+  }
+
+  /// The nodes at rest that share stiffness with the moving ones: where a loose part hangs on the rest.
+  std::string at_rest_beside(const Bundle& bundle) const {
+    constexpr std::size_t kShown = 4;
+    std::vector<char> moves(static_cast<std::size_t>(s_.nodes), 0);
+    for (const Index node : bundle.nodes) moves[static_cast<std::size_t>(node)] = 1;
+    std::vector<NodeNumber> found;
+    const MatrixFamily& family = *e_.in.matrix.family;
+    for (Index j = 0; j < family.rows; ++j) {
+      const auto b = static_cast<std::size_t>(s_.node_of[static_cast<std::size_t>(j)]);
+      for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
+        const auto a = static_cast<std::size_t>(s_.node_of[static_cast<std::size_t>(family.row[k])]);
+        if (moves[a] == moves[b] || e_.in.matrix.entry(k, family.row[k], j) == 0) continue;
+        const NodeNumber number = s_.number[moves[a] ? b : a];
+        if (number != kNoNode) found.push_back(number);
+      }
+    }
+    std::sort(found.begin(), found.end());
+    found.erase(std::unique(found.begin(), found.end()), found.end());
+    if (found.empty()) return "";
+    std::string text = found.size() == 1 ? "node " : "nodes ";
+    const std::size_t shown = found.size() <= kShown + 1 ? found.size() : kShown;
+    for (std::size_t k = 0; k < shown; ++k) {
+      text += (k == 0 ? "" : k + 1 == found.size() ? " and " : ", ") + std::to_string(found[k]);
+    }
+    return shown < found.size() ? text + " and " + std::to_string(found.size() - shown) + " more" : text;
   }
 
   /// Most of what a moving node touches stays or moves the other way: no body of its own, but a pattern.

@@ -1,3 +1,5 @@
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <cmath>
 #include <numeric>
@@ -30,6 +32,7 @@ class NegativeNamer {
     e_.out.negative = negative_;
     if (negative_ == 0) return;
     if (2 * negative_ > s_.rows) return add_negated();
+    if (add_unlisted_multipliers()) return;
     std::optional<ConstraintSpace> space;
     if (e_.has_multipliers()) space.emplace(s_, e_.in.matrix);
     NegativePairs pairs = find_negative({s_, e_.in.matrix, e_.factor, e_.motions, e_.near, e_.resolution,
@@ -63,6 +66,41 @@ class NegativeNamer {
           "Multipliers act on each other, so that the negative directions of the matrix are not "
           "those of a structure on its constraints; no cause is named.");
     }
+  }
+
+  /// Multipliers that nobody listed bring negative directions along, which are none of the structure; no
+  /// other one is told from them.
+  bool add_unlisted_multipliers() {
+    std::vector<Index> rows;
+    for (Index row = 0; row < s_.rows; ++row) {
+      if (e_.looks_like_multiplier(row)) rows.push_back(row);
+    }
+    if (rows.empty()) return false;
+    const auto count = static_cast<Index>(rows.size());
+    Direction direction;
+    direction.sign = -1;
+    direction.count = negative_;
+    direction.moving_rows = count;
+    std::vector<Index> nodes;
+    for (const Index row : rows) nodes.push_back(s_.node_of[static_cast<std::size_t>(row)]);
+    std::sort(nodes.begin(), nodes.end());
+    nodes.erase(std::unique(nodes.begin(), nodes.end()), nodes.end());
+    direction.moving_nodes = static_cast<Index>(nodes.size());
+    direction.nodes =
+        ranked(s_, rows, std::vector<double>(rows.size(), 1.0 / static_cast<double>(count)), kShownShares);
+    CauseFacts facts;
+    facts.unresolved_because = fmt::format(
+        "{} no stiffness of {} own and {} on others, as the multipliers of constraints do, {} among them; "
+        "multipliers bring a negative direction each that is none of the structure. No cause is named before "
+        "it is known which equations are multipliers.",
+        count == 1 ? "One equation has" : fmt::format("{} equations have", count),
+        count == 1 ? "its" : "their", count == 1 ? "acts" : "act", place_of(direction));
+    e_.add(std::move(direction), std::move(facts));
+    e_.out.directions.back().remedy =
+        "List the multipliers (--multipliers FILE, or dof \"multiplier\" in the dof map); if they are none, "
+        "look "
+        "for what took the stiffness of these equations away.";
+    return true;
   }
 
   void add_negative_unresolved(Index count, const char* because) {

@@ -1,9 +1,9 @@
 #include "diagnose/seams.hpp"
 
 #include <algorithm>
-#include <set>
 
 #include "io/coincident.hpp"
+#include "io/joined_pairs.hpp"
 
 namespace stanchion {
 
@@ -29,33 +29,43 @@ std::string Seams::in_words(const Structure& s, const std::vector<Index>& nodes)
 Seams find_seams(const Structure& s, const ShiftedMatrix& matrix) {
   Seams seams;
   if (!s.placed) return seams;
-  std::vector<Index> nodes;
-  std::vector<std::array<double, 3>> places;
-  for (Index node = 0; node < s.nodes; ++node) {
-    if (!s.has_place[static_cast<std::size_t>(node)]) continue;
-    nodes.push_back(node);
-    places.push_back(s.place[static_cast<std::size_t>(node)]);
+  const auto multiplies = [&s](Index row) {
+    return s.kind[static_cast<std::size_t>(row)] == DofKind::kMultiplier;
+  };
+  std::vector<char> moves(static_cast<std::size_t>(s.nodes), 0);  // has a dof, not multipliers alone
+  for (Index row = 0; row < s.rows; ++row) {
+    if (!multiplies(row)) moves[static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(row)])] = 1;
   }
+  std::vector<std::size_t> nodes;
+  std::vector<std::array<double, 3>> places;
+  for (std::size_t node = 0; node < moves.size(); ++node) {
+    if (!s.has_place[node] || !moves[node]) continue;
+    nodes.push_back(node);
+    places.push_back(s.place[node]);
+  }
+  std::vector<std::pair<std::size_t, std::size_t>> pairs;
   for (const auto& [a, b] : coincident_places(places, 1e-9 * extent_of(places)))
-    seams.pairs.emplace_back(nodes[a], nodes[b]);
-  if (seams.pairs.empty()) return seams;
-  std::set<std::pair<Index, Index>> linked;
+    pairs.emplace_back(nodes[a], nodes[b]);
+  if (pairs.empty()) return seams;
+  JoinedPairs joined(pairs, static_cast<std::size_t>(s.nodes));
   const MatrixFamily& family = *matrix.family;
-  std::vector<char> concerned(static_cast<std::size_t>(s.nodes), 0);
-  for (const auto& [a, b] : seams.pairs)
-    concerned[static_cast<std::size_t>(a)] = concerned[static_cast<std::size_t>(b)] = 1;
   for (Index j = 0; j < family.rows; ++j) {
-    const Index a = s.node_of[static_cast<std::size_t>(j)];
-    if (!concerned[static_cast<std::size_t>(a)]) continue;
+    const auto a = static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(j)]);
+    if (!multiplies(j) && !joined.concerns(a)) continue;
     for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-      const Index b = s.node_of[static_cast<std::size_t>(family.row[k])];
-      if (a == b || !concerned[static_cast<std::size_t>(b)] || matrix.entry(k, family.row[k], j) == 0)
-        continue;
-      const std::pair<Index, Index> pair{std::min(a, b), std::max(a, b)};
-      if (std::binary_search(seams.pairs.begin(), seams.pairs.end(), pair)) linked.insert(pair);
+      const Index i = family.row[k];
+      const auto b = static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(i)]);
+      if (matrix.entry(k, i, j) == 0 || (multiplies(i) && multiplies(j))) continue;
+      if (multiplies(i) || multiplies(j)) {
+        const std::size_t held = multiplies(i) ? a : b;
+        if (joined.concerns(held)) joined.add_constraint(multiplies(i) ? i : j, held);
+      } else if (a != b && joined.concerns(a) && joined.concerns(b)) {
+        joined.add_stiffness(a, b);
+      }
     }
   }
-  std::erase_if(seams.pairs, [&](const std::pair<Index, Index>& pair) { return linked.count(pair) > 0; });
+  for (const auto& [a, b] : joined.apart())
+    seams.pairs.emplace_back(static_cast<Index>(a), static_cast<Index>(b));
   return seams;
 }
 

@@ -15,19 +15,26 @@ std::string listed(const std::vector<std::string>& items) {
   return text;
 }
 
-std::string nodes_in_words(Index nodes) {
-  return nodes == 1 ? "one node" : fmt::format("{} nodes", nodes);
+/// Without a dof map every equation stands for itself.
+std::string nodes_in_words(const CauseFacts& f) {
+  const char* noun = f.named ? "node" : "equation";
+  return f.nodes == 1 ? fmt::format("one {}", noun) : fmt::format("{} {}s", f.nodes, noun);
+}
+
+/// "node 12", without its dof.
+std::string node_alone(const CauseFacts& f) {
+  return f.place.substr(0, f.place.find(','));
 }
 
 std::string around(const CauseFacts& f) {
-  return f.nodes == 1 ? f.place.substr(0, f.place.find(','))
-                      : fmt::format("the {} around {}", nodes_in_words(f.nodes), f.place);
+  return f.nodes == 1 ? node_alone(f) : fmt::format("the {} around {}", nodes_in_words(f), f.place);
 }
 
 std::string loose_part(const CauseFacts& f) {
   const std::string free =
       f.motions.empty()
-          ? fmt::format("it can move freely in {} independent ways", f.count)
+          ? (f.count == 1 ? std::string("it can move freely in one way")
+                          : fmt::format("it can move freely in {} independent ways", f.count))
           : fmt::format("it can move freely as one rigid body: {}{}", listed(f.motions),
                         static_cast<Index>(f.motions.size()) < f.count
                             ? fmt::format(" and {} more, which are turns or cannot be named without "
@@ -36,14 +43,19 @@ std::string loose_part(const CauseFacts& f) {
                             : "");
   std::string text;
   if (f.whole_part && f.only_part) {
-    text = fmt::format("The whole model ({}) is not held: {}.", nodes_in_words(f.nodes), free);
+    text = fmt::format("The whole model ({}) is not held: {}.", nodes_in_words(f), free);
   } else if (f.whole_part) {
     text =
         fmt::format("{}: this part shares no stiffness with the rest and is not held; {}.", around(f), free);
   } else {
     text = fmt::format("{}: attached to the rest, but not against every motion; {}.", around(f), free);
   }
-  if (f.by_connectivity) text += " Told by connectivity alone, for no coordinates are known.";
+  if (!f.hangs.empty()) text += fmt::format(" It hangs on the rest at {}.", f.hangs);
+  if (f.by_connectivity) {
+    text += !f.placed          ? " Told by connectivity alone, for no coordinates are known."
+            : !f.displacements ? " Told by connectivity alone, for its dofs are no displacements."
+                               : "";
+  }
   if (!f.seam.empty()) text += " " + f.seam + ": a seam that was likely meant to be joined.";
   return text;
 }
@@ -53,6 +65,7 @@ std::string mechanism(const CauseFacts& f) {
   if (f.rigid && !f.pattern) {
     text = fmt::format("{}: this part can turn against the rest without resistance, as on a hinge: {}.",
                        around(f), listed(f.motions));
+    if (!f.hangs.empty()) text += fmt::format(" It hangs on the rest at {}.", f.hangs);
   } else {
     const std::string meets =
         f.count == 1 ? "a motion meets" : fmt::format("{} independent motions meet", f.count);
@@ -92,8 +105,7 @@ std::string sentence_of(const CauseFacts& f) {
             "{}{}: no stiffness at all across what holds the {} otherwise, as where bars meet in one line (a "
             "pinned "
             "chain): {} without any resistance.",
-            f.nodes == 1 ? "" : nodes_in_words(f.nodes) + ", among them ", f.place,
-            f.nodes == 1 ? "node" : "nodes",
+            f.nodes == 1 ? "" : nodes_in_words(f) + ", among them ", f.place, f.nodes == 1 ? "node" : "nodes",
             f.count == 1 ? "one direction" : fmt::format("{} directions", f.count));
       }
       return f.count == 1
@@ -103,12 +115,12 @@ std::string sentence_of(const CauseFacts& f) {
                        "{} equations ({}) at {}, {} among them, have no stiffness at all: nothing is "
                        "attached to "
                        "these dofs.",
-                       f.count, f.dof, nodes_in_words(f.nodes), f.place);
+                       f.count, f.dof, nodes_in_words(f), f.place);
     case Cause::kMissingRotation:
       return fmt::format(
           "{}: nothing resists a rotation of the node itself, {} in all; the elements there have no "
           "stiffness about that axis (no drilling stiffness, or bars only). One cause, however many nodes.",
-          f.nodes == 1 ? f.place : fmt::format("{}, {} among them", nodes_in_words(f.nodes), f.place),
+          f.nodes == 1 ? f.place : fmt::format("{}, {} among them", nodes_in_words(f), f.place),
           f.count == 1 ? "one direction" : fmt::format("{} directions", f.count));
     case Cause::kNegativeSpring:
       if (!f.other_place.empty()) {
@@ -131,15 +143,17 @@ std::string sentence_of(const CauseFacts& f) {
           f.place);
     case Cause::kUnstableWhole:
       return fmt::format(
-          "{} nodes give way together, {} the most: the structure as a whole is unstable in this state{}.",
-          f.nodes, f.place,
+          "{} give way together, {} the most: the structure as a whole is unstable in this state{}.",
+          nodes_in_words(f), f.place,
           f.stiffness < 0 ? "; K alone resists the motion, what is added to it does not: the state is past a "
                             "critical load"
                           : ", as past a critical load");
     case Cause::kRedundantConstraint:
-      return fmt::format("{} constraint{} {} others: the multiplier{} of {} can take any value.", f.count,
-                         f.count == 1 ? "" : "s", f.count == 1 ? "repeats" : "repeat",
-                         f.count == 1 ? "" : "s", f.place);
+      return fmt::format(
+          "{} others: {} can exchange force among themselves without any effect on the structure.",
+          f.count == 1 ? "One constraint repeats" : fmt::format("{} constraints repeat", f.count),
+          f.nodes > 1 ? fmt::format("the multipliers of {}, {} among them,", nodes_in_words(f), node_alone(f))
+                      : "the multipliers of " + node_alone(f));
     case Cause::kNearMechanism:
       return fmt::format(
           "{}: positive, but the resistance to this motion is only {:.2g} of what the dofs have by "
@@ -147,7 +161,7 @@ std::string sentence_of(const CauseFacts& f) {
           f.place, f.energy,
           f.motions.empty() ? ""
                             : fmt::format("; {} move as one rigid body on something very soft ({})",
-                                          nodes_in_words(f.nodes), listed(f.motions)),
+                                          nodes_in_words(f), listed(f.motions)),
           f.seam.empty() ? "" : " " + f.seam + ".");
     case Cause::kOverStiffCoupling:
       return fmt::format(

@@ -27,8 +27,9 @@ Result<ModelInput> read_model_to_locate(const Request& request, const RunContext
   Request without = request;
   without.input.dofs.reset();
   outcome = before;
-  leave_out("dof-map-unusable", "the dof map", "equations are named by their numbers", model.status(),
-            outcome);
+  leave_out("dof-map-unusable", "the dof map",
+            "equations are named by their numbers, and multipliers are known from --multipliers only",
+            model.status(), outcome);
   return read_model(without, context, pool, outcome);
 }
 

@@ -3,12 +3,15 @@
 #include <algorithm>
 
 #include "base/clock.hpp"
+#include "base/digest.hpp"
+#include "base/mapped_file.hpp"
 #include "engine/fingerprint.hpp"
 #include "io/equation_list.hpp"
 #include "io/preflight.hpp"
 #include "io/preflight_nodes.hpp"
 #include "io/read_matrix.hpp"
 #include "io/strike.hpp"
+#include "model/input_files.hpp"
 
 namespace stanchion {
 namespace {
@@ -37,6 +40,7 @@ class ModelReader {
     if (Status status = read_matrices(); !status.ok()) return status;
     if (Status status = strike_equations(); !status.ok()) return status;
     if (Status status = inspect(); !status.ok()) return status;
+    digest_tables();
     outcome_.rows_analysed = model_.stiffness.rows;
     outcome_.timings.read = watch.seconds();
     return std::move(model_);
@@ -182,10 +186,30 @@ class ModelReader {
       }
     }
     if (!model_.dofs) return;
+    if (model_.nodes && places_collapse(*model_.dofs, *model_.nodes)) {
+      model_.nodes.reset();
+      outcome_.warnings.push_back(
+          {"nodes-unusable",
+           "the node table cannot be used and is left out; places are not known. Reason: all nodes have one "
+           "z, and more than half of them lie at the place of another. Remedy: give x, y and z of every node",
+           *input_.nodes});
+    }
     if (request_.want_location && input_.dofs)
       append(outcome_.warnings, inspect_partners(*model_.dofs, *input_.dofs));
     if (model_.nodes)
-      append(outcome_.warnings, inspect_nodes(model_.stiffness, *model_.dofs, *model_.nodes, *input_.nodes));
+      append(outcome_.warnings,
+             inspect_nodes(model_.stiffness, *model_.dofs, model_.multipliers, *model_.nodes, *input_.nodes));
+  }
+
+  /// What cannot be opened was refused, or left out with a warning, where it was read.
+  void digest_tables() {
+    std::vector<InputFile> files = input_files(input_);
+    if (!request_.audit.values.empty()) files.push_back({"values", request_.audit.values, false});
+    for (const InputFile& file : files) {
+      if (file.matrix) continue;
+      const auto bytes = MappedFile::open(file.path);
+      if (bytes.ok()) outcome_.tables.push_back({file.role, file.path, sha256(bytes->bytes())});
+    }
   }
 
   const InputRequest& input_;

@@ -8,6 +8,7 @@
 #include <vector>
 
 #include "io/coincident.hpp"
+#include "io/joined_pairs.hpp"
 #include "io/place.hpp"
 
 namespace stanchion {
@@ -44,17 +45,18 @@ struct PlacedNodes {
   std::unordered_map<NodeNumber, std::size_t> index;
 };
 
-PlacedNodes placed_nodes(const DofMap& dofs, const NodeTable& nodes) {
+/// What only multipliers belong to has no place of its own.
+PlacedNodes placed_nodes(const DofMap& dofs, const std::vector<char>& multiplies, const NodeTable& nodes) {
   PlacedNodes result;
   std::set<NodeNumber> missing;
   NodeNumber last = kNoNode;
   for (Index e = 0; e < dofs.equations(); ++e) {
     const NodeNumber node = dofs.node(e);
-    if (node == kNoNode || node == last) continue;
+    if (node == kNoNode || node == last || multiplies[static_cast<std::size_t>(e)]) continue;
     last = node;
     const auto* place = nodes.find(node);
     if (place == nullptr) {
-      if (!dofs.is_multiplier(e)) missing.insert(node);
+      missing.insert(node);
       continue;
     }
     if (!result.index.try_emplace(node, result.number.size()).second) continue;
@@ -80,9 +82,12 @@ std::pair<double, double> middle(const std::vector<std::array<double, 3>>& place
 
 class NodeInspector {
  public:
-  NodeInspector(const SymmetricMatrix& matrix, const DofMap& dofs, const NodeTable& nodes,
-                const std::string& path)
-      : matrix_(matrix), dofs_(dofs), path_(path), nodes_(placed_nodes(dofs, nodes)) {}
+  NodeInspector(const SymmetricMatrix& matrix, const DofMap& dofs, const std::vector<Index>& multipliers,
+                const NodeTable& nodes, const std::string& path)
+      : matrix_(matrix), dofs_(dofs), path_(path), multiplies_(static_cast<std::size_t>(matrix.rows), 0) {
+    for (const Index e : multipliers) multiplies_[static_cast<std::size_t>(e)] = 1;
+    nodes_ = placed_nodes(dofs, multiplies_, nodes);
+  }
 
   Warnings run() {
     if (!nodes_.without.empty() && !nodes_.number.empty()) {
@@ -133,37 +138,40 @@ class NodeInspector {
     if (pairs.size() > kPlacesShown) text += " and " + std::to_string(pairs.size() - kPlacesShown) + " more";
     warn("coincident-nodes",
          std::to_string(pairs.size()) + (pairs.size() == 1 ? " pair of nodes lies" : " pairs of nodes lie") +
-             " at one place without any stiffness between them: " + text +
+             " at one place with nothing between them: " + text +
              ". A seam that was not merged? Merge the nodes, or tie them, unless a gap is meant");
   }
 
   void drop_connected(std::vector<std::pair<std::size_t, std::size_t>>& pairs) const {
-    std::vector<char> concerned(nodes_.number.size(), 0);
-    for (const auto& [a, b] : pairs) concerned[a] = concerned[b] = 1;
+    JoinedPairs joined(pairs, nodes_.number.size());
     std::vector<std::ptrdiff_t> node_of(static_cast<std::size_t>(matrix_.rows), -1);
     for (Index e = 0; e < matrix_.rows; ++e) {
+      if (multiplies_[static_cast<std::size_t>(e)]) continue;
       const auto at = nodes_.index.find(dofs_.node(e));
-      if (at != nodes_.index.end() && concerned[at->second])
+      if (at != nodes_.index.end() && joined.concerns(at->second))
         node_of[static_cast<std::size_t>(e)] = static_cast<std::ptrdiff_t>(at->second);
     }
-    std::set<std::pair<std::size_t, std::size_t>> linked;
     for (Index column = 0; column < matrix_.rows; ++column) {
       const auto a = node_of[static_cast<std::size_t>(column)];
-      if (a < 0) continue;
+      const bool acts = multiplies_[static_cast<std::size_t>(column)] != 0;
+      if (a < 0 && !acts) continue;
       for (Offset k = matrix_.column_start[column]; k < matrix_.column_start[Offset{column} + 1]; ++k) {
-        const auto b = node_of[static_cast<std::size_t>(matrix_.row[k])];
-        if (b < 0 || a == b || matrix_.value[k] == 0) continue;
-        const std::pair<std::size_t, std::size_t> pair{static_cast<std::size_t>(std::min(a, b)),
-                                                       static_cast<std::size_t>(std::max(a, b))};
-        if (std::binary_search(pairs.begin(), pairs.end(), pair)) linked.insert(pair);
+        const Index row = matrix_.row[k];
+        const auto b = node_of[static_cast<std::size_t>(row)];
+        if (matrix_.value[k] == 0) continue;
+        if (a >= 0 && b >= 0) joined.add_stiffness(static_cast<std::size_t>(a), static_cast<std::size_t>(b));
+        if (acts && b >= 0) joined.add_constraint(column, static_cast<std::size_t>(b));
+        if (a >= 0 && multiplies_[static_cast<std::size_t>(row)])
+          joined.add_constraint(row, static_cast<std::size_t>(a));
       }
     }
-    std::erase_if(pairs, [&](const auto& pair) { return linked.count(pair) > 0; });
+    pairs = joined.apart();
   }
 
   const SymmetricMatrix& matrix_;
   const DofMap& dofs_;
   const std::string& path_;
+  std::vector<char> multiplies_;  ///< by equation
   PlacedNodes nodes_;
   double size_ = 0;
   Warnings warnings_;
@@ -198,10 +206,24 @@ Warnings inspect_partners(const DofMap& dofs, const std::string& dofs_path) {
            dofs_path}};
 }
 
-Warnings inspect_nodes(const SymmetricMatrix& matrix, const DofMap& dofs, const NodeTable& nodes,
+bool places_collapse(const DofMap& dofs, const NodeTable& nodes) {
+  const PlacedNodes placed =
+      placed_nodes(dofs, std::vector<char>(static_cast<std::size_t>(dofs.equations()), 0), nodes);
+  const auto& places = placed.place;
+  const bool level = std::all_of(places.begin(), places.end(),
+                                 [&](const std::array<double, 3>& p) { return p[2] == places[0][2]; });
+  if (places.size() < 3 || !level) return false;
+  std::vector<char> shared(places.size(), 0);
+  for (const auto& [a, b] : coincident_places(places, kSamePlace * extent_of(places)))
+    shared[a] = shared[b] = 1;
+  return 2 * std::count(shared.begin(), shared.end(), 1) > static_cast<std::ptrdiff_t>(places.size());
+}
+
+Warnings inspect_nodes(const SymmetricMatrix& matrix, const DofMap& dofs,
+                       const std::vector<Index>& multipliers, const NodeTable& nodes,
                        const std::string& nodes_path) {
   if (dofs.equations() != matrix.rows) return {};
-  return NodeInspector(matrix, dofs, nodes, nodes_path).run();
+  return NodeInspector(matrix, dofs, multipliers, nodes, nodes_path).run();
 }
 
 }  // namespace stanchion

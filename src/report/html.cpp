@@ -166,16 +166,32 @@ std::string staircase(const Outcome& outcome) {
                    kWidth / 2, kHeight - 4);
 }
 
+/// A path may go on in the next line after each folder.
+std::string path_to_html(const std::string& path) {
+  std::string html;
+  for (std::size_t from = 0; from < path.size();) {
+    const std::size_t slash = path.find('/', from);
+    const std::size_t to = slash == std::string::npos ? path.size() : slash + 1;
+    html += escaped(path.substr(from, to - from)) + (to < path.size() ? "<wbr>" : "");
+    from = to;
+  }
+  return html;
+}
+
 std::string inputs_to_html(const Outcome& outcome) {
   std::string html =
-      "<table><tr><th>input</th><th>file</th><th class=\"right\">equations</th><th "
+      "<table class=\"inputs\"><tr><th>input</th><th>file</th><th class=\"right\">equations</th><th "
       "class=\"right\">entries</th><th>SHA-256</th></tr>\n";
   for (const InputRecord& input : outcome.inputs) {
     html += fmt::format(
         "<tr><td>{}{}</td><td>{}</td><td class=\"right\">{}</td><td class=\"right\">{}</td><td "
         "class=\"digest\">{}</td></tr>\n",
-        escaped(input.role), input.factor ? ", times " + exact(*input.factor) : "", escaped(input.path),
+        escaped(input.role), input.factor ? ", times " + exact(*input.factor) : "", path_to_html(input.path),
         grouped(input.rows), grouped(input.entries), escaped(input.sha256));
+  }
+  for (const TableRecord& table : outcome.tables) {
+    html += fmt::format("<tr><td>{}</td><td>{}</td><td></td><td></td><td class=\"digest\">{}</td></tr>\n",
+                        escaped(table.role), path_to_html(table.path), escaped(table.sha256));
   }
   html += "</table>\n";
   Page page;
@@ -213,6 +229,7 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   // What follows up to the first title belongs to the answer; titles open sections of their own.
   std::string heading = "Answer";
   std::string chart = staircase(outcome);
+  if (!chart.empty()) chart = "<div class=\"wide\">" + chart + "</div>\n";
   for (std::size_t k = lead; k < blocks.size();) {
     std::size_t end = k;
     while (end < blocks.size() && blocks[end].kind != Page::Kind::kTitle) ++end;

@@ -198,9 +198,9 @@ std::string scale_of(double top) {
   std::string html = "<p class=\"scale\">";
   for (int step = 0; step < 6; ++step) {
     html += fmt::format(
-        "<span><svg viewBox=\"0 0 16 12\" aria-hidden=\"true\"><path class=\"v-field v-{0}\" d=\"M3 6h10\" "
-        "style=\"stroke-width:9\"/></svg> {1:.1f} to {2:.1f}</span>",
-        step, top * step / 6, top * (step + 1) / 6);
+        "<span><svg viewBox=\"0 0 16 12\" aria-hidden=\"true\"><path class=\"v-field v-{0}\" d=\"M8 6h0\" "
+        "style=\"stroke-width:{3:.1f}\"/></svg> {1:.1f} to {2:.1f}</span>",
+        step, top * step / 6, top * (step + 1) / 6, 7 * field_dot(step));
   }
   return html + "</p>";
 }
@@ -301,14 +301,14 @@ std::string accuracy_to_html(const LocateOutcome& located) {
   std::string html = fmt::format(
       "<p>log10 of k<sub>ii</sub> (K<sup>-1</sup>)<sub>ii</sub>: about so many of 16 decimal digits are lost "
       "at an equation. Typical "
-      "{:.1f}, at most {:.1f}: {}. Attention from {}, alarm from {} digits (common practice, no source). {} "
+      "{:.1f}, at most {:.1f}: {}. Attention from {}, alarm from {} digits (common practice, no source); {} "
       "({} vectors, about "
       "0.2 digits off).</p>\n",
       accuracy.typical, accuracy.largest, accuracy_verdict(accuracy), exact(accuracy.attention),
       exact(accuracy.alarm), escaped(accuracy.method), accuracy.vectors);
   if (!located.accuracy_note.empty()) html += tag("p", located.accuracy_note);
   if (!accuracy.held.empty()) html += tag("p", "Held at " + held_in_words(accuracy) + ".");
-  html += histogram(accuracy);
+  html += "<div class=\"wide\">" + histogram(accuracy) + "</div>";
   const std::string field =
       draw_field(located.picture, accuracy.by_node, std::max(accuracy.attention, accuracy.largest));
   std::string worst = "<table><tr><th>node</th><th>dof</th><th class=\"right\">digits lost</th></tr>\n";

@@ -43,7 +43,8 @@ ul { margin: 0; padding-left: 1.1rem; } li { margin: 0 0 .3rem; }
 table { border-collapse: collapse; width: 100%; margin: .2rem 0; }
 th, td:first-child { overflow-wrap: normal; white-space: nowrap; }
 th { text-align: left; font-weight: 600; color: var(--soft); border-bottom: 1px solid var(--line); }
-td, th { padding: .22rem .9rem .22rem 0; vertical-align: top; } .right { text-align: right; }
+td, th { padding: .22rem .9rem .22rem 0; vertical-align: top; } .right { text-align: right; white-space: nowrap; overflow-wrap: normal; }
+table.inputs td:nth-child(2) { min-width: 8rem; } sub, sup { line-height: 0; } section.band p { margin: .2rem 0 .7rem; }
 td.bar { width: 34%; } td.bar i { display: block; height: .62rem; margin-top: .42rem; background: var(--blue); border-radius: 0 3px 3px 0; min-width: 2px; }
 code, .digest { font-family: ui-monospace, "DejaVu Sans Mono", Menlo, Consolas, monospace; font-size: .84rem; }
 .cause { padding: .2rem 0 1.6rem; } .cause + .cause { border-top: 1px dashed var(--line); padding-top: 1.2rem; }
@@ -74,19 +75,22 @@ text.v-number { font-size: 11.5px; paint-order: stroke; stroke: var(--tint); str
 .c-axis { stroke: var(--soft); fill: none; } .c-level { stroke: var(--ring); fill: none; stroke-dasharray: 4 3; } .c-step { stroke: var(--blue); fill: none; stroke-width: 2.2; }
 svg text.c-small { font-size: 11px; fill: var(--soft); }
 footer { border-top: 3px double var(--line); margin-top: .8rem; padding-top: .7rem; color: var(--soft); font-size: .87rem; }
-@media (max-width: 52rem) {
+@media screen and (max-width: 52rem) {
   main { padding: 1.2rem 1.1rem 2rem; }
-  section.band { grid-template-columns: 1fr; } section.band > h2 { margin-bottom: .5rem; }
+  section.band { grid-template-columns: minmax(0, 1fr); } section.band > h2 { margin-bottom: .5rem; }
   .verdict { grid-template-columns: 2.8rem 1fr; gap: 0 .9rem; } .verdict svg { width: 2.8rem; height: 2.8rem; } .verdict .lead { font-size: 1.28rem; }
-  .plates, .cause .columns { grid-template-columns: 1fr; } dl { grid-template-columns: 1fr; gap: 0; } dd { margin-bottom: .45rem; }
+  table { display: block; overflow-x: auto; } .wide { overflow-x: auto; } .wide > svg.chart { min-width: 34rem; }
+  .plates, .cause .columns { grid-template-columns: minmax(0, 1fr); } dl { grid-template-columns: 1fr; gap: 0; } dd { margin-bottom: .45rem; }
 }
 @media print {
   :root { color-scheme: light; --paper: #fff; --sheet: #fff; --ink: #111; --soft: #444; --line: #bbb; --tint: #f6f5f2; --blue: #17608f;
     --orange: #c4560a; --ring: #7d1d4f; --clear: #17608f; --heed: #b2470a; --open: #6b5a2a; --f0: #d5dfe6; --f1: #9fc0d4; --f2: #5f9bc0; --f3: #2c6f9e; --f4: #b85a14; --f5: #7d1d4f; }
   @page { size: A4; margin: 16mm 15mm; }
   body { font-size: 10pt; } main { padding: 0; max-width: none; min-height: 0; }
-  section.band { grid-template-columns: 1fr; padding: .8rem 0; } section.band > h2 { margin-bottom: .3rem; }
-  figure, tr, li, .cause > header, .verdict { break-inside: avoid; } h2, h3 { break-after: avoid; }
+  section.band { display: block; padding: .7rem 0; } section.band > h2 { margin-bottom: .3rem; }
+  .verdict { padding: 1.1rem 0 .9rem; } .verdict .lead { font-size: 1.4rem; } td, th { padding: .12rem .7rem .12rem 0; }
+  .cause .columns { gap: .4rem 1.4rem; } .plates { gap: .5rem; } svg.chart { max-width: 36rem; } .cause { padding-bottom: .7rem; }
+  figure, tr, li, .cause .columns, .cause > header, .verdict, .wide { break-inside: avoid; } h2, h3, .why { break-after: avoid; }
   * { -webkit-print-color-adjust: exact; print-color-adjust: exact; }
 }
 )css";

@@ -132,6 +132,10 @@ Json json_of(const InputRecord& input) {
   return {{"path", input.path}, {"sha256", input.sha256}, {"rows", input.rows}, {"entries", input.entries}};
 }
 
+Json json_of(const TableRecord& table) {
+  return {{"role", table.role}, {"path", table.path}, {"sha256", table.sha256}};
+}
+
 /// One member a role; "added" is a list because --add may be repeated. A role that was not given is null.
 Json inputs_of(const std::vector<InputRecord>& inputs) {
   Json roles = {{"stiffness", nullptr}, {"geometric", nullptr}, {"mass", nullptr}, {"added", nullptr}};
@@ -188,6 +192,8 @@ Json common_part(const Outcome& outcome) {
   document["title"] = json_of(outcome.title);
   document["reference"] = json_of(outcome.reference);
   document["inputs"] = inputs_of(outcome.inputs);
+  document["tables"] = Json::array();
+  for (const TableRecord& table : outcome.tables) document["tables"].push_back(json_of(table));
   document["host"] = json_of(outcome.host);
   document["rows_analysed"] = outcome.rows_analysed;
   document["rows_struck"] = outcome.rows_struck;

@@ -431,7 +431,8 @@ ViewAxes best_view(const Picture& picture, const std::vector<std::array<float, 3
   if (dot(along, kFrontAboveRight) < 0) along = {-along[0], -along[1], -along[2]};
   for (std::size_t d = 0; d < 3; ++d) toward[d] += 0.40 * aside[d] + 0.24 * along[d];
   view.toward = unit(toward);
-  const Triple vertical = std::fabs(view.toward[2]) > 0.97 ? Triple{0, 1, 0} : Triple{0, 0, 1};
+  // Seen from so high that z would no longer hold the picture upright, y does.
+  const Triple vertical = std::fabs(view.toward[2]) > 0.8 ? Triple{0, 1, 0} : Triple{0, 0, 1};
   view.right = unit(cross(vertical, view.toward));
   view.up = cross(view.toward, view.right);
   return view;
@@ -461,6 +462,10 @@ ModelDrawing draw_model(const Picture& picture, const std::vector<std::array<flo
   return Drawer(picture, shape, marks).run(coarse);
 }
 
+double field_dot(int step) {
+  return 0.8 + 0.14 * step;
+}
+
 std::string draw_field(const Picture& picture, const std::vector<float>& value, double top) {
   if (picture.place.empty() || value.size() != picture.place.size()) return "";
   constexpr int kSteps = 6;
@@ -475,7 +480,7 @@ std::string draw_field(const Picture& picture, const std::vector<float>& value, 
   std::array<std::string, kSteps> paths;
   std::string without;  // nodes that have no figure
   const double dot_width =
-      std::clamp(0.5 * std::sqrt(kWidth * kHeight / static_cast<double>(order.size())), 2.8, 11.0);
+      std::clamp(0.6 * std::sqrt(kWidth * kHeight / static_cast<double>(order.size())), 3.2, 11.0);
   for (const std::size_t node : order) {
     const Point p = to.at(picture.place[node]);
     if (!seen.insert(cell_of(p, kCell)).second) continue;
@@ -494,9 +499,10 @@ std::string draw_field(const Picture& picture, const std::vector<float>& value, 
   if (!without.empty()) svg += fmt::format("<path class=\"v-dot\" d=\"{}\"/>\n", without);
   for (int step = 0; step < kSteps; ++step) {
     const std::string& path = paths[static_cast<std::size_t>(step)];
+    // Larger as well as of another colour where more digits are lost.
     if (!path.empty())
       svg += fmt::format("<path class=\"v-field v-{}\" style=\"stroke-width:{:.1f}\" d=\"{}\"/>\n", step,
-                         dot_width, path);
+                         dot_width * field_dot(step), path);
   }
   return svg + "</svg>\n";
 }

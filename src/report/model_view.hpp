@@ -50,6 +50,9 @@ CoarseModel coarse_model(const LocateOutcome& located, const ReducedModel& reduc
 ModelDrawing draw_model(const Picture& picture, const std::vector<std::array<float, 3>>& shape,
                         const std::vector<Mark>& marks, const CoarseModel* coarse = nullptr);
 
+/// Size of a dot of the field, over the usual one, by its step 0 to 5.
+double field_dot(int step);
+
 /// The cloud coloured by a value of each node (classes v-0 to v-5 for six steps from 0 to `top`); empty
 /// without nodes.
 std::string draw_field(const Picture& picture, const std::vector<float>& value, double top);

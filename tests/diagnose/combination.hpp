@@ -39,9 +39,27 @@ inline bool knows_fault(const std::string& name, const std::string& fault) {
   return false;
 }
 
-/// Loose part, hinge, soft springs, a negative spring, rotations without stiffness: those that the specimen
-/// knows, the others by hand. Parts of about `unknowns` equations each.
-inline Combination combination_of(const std::string& name, Offset unknowns, unsigned seed) {
+/// How far numbers are off those of a drawing; what is zero stays so at the resolution.
+struct Jitter {
+  double place = 1e-9;  ///< of every coordinate, absolute
+  double entry = 0;     ///< of every entry, relative
+};
+
+/// How many ties a fault adds.
+inline Index added_ties(const std::string& name, Offset unknowns, Fault fault) {
+  const auto ties = [&](Fault with) {
+    const Specimen specimen = specimen_with(name, unknowns, with);
+    return std::count_if(specimen.dofs.begin(), specimen.dofs.end(), [](const SpecimenDof& d) {
+      return std::string(specimen::dof_name(d.dof)) == "multiplier";
+    });
+  };
+  return static_cast<Index>(ties(fault) - ties(Fault::kNone));
+}
+
+/// Loose part, hinge, soft springs, a negative spring, repeated ties, rotations without stiffness: those that
+/// the specimen knows, the others by hand. Parts of about `unknowns` equations each.
+inline Combination combination_of(const std::string& name, Offset unknowns, unsigned seed,
+                                  const Jitter& jitter = {}) {
   constexpr std::int64_t kStep = 1000000;
   Combination made;
   PlantedModel& model = made.model;
@@ -53,17 +71,34 @@ inline Combination combination_of(const std::string& name, Offset unknowns, unsi
   append(Fault::kNone);
   // A spring that pushes along at a node in the middle of the numbering; the part was definite, so it alone
   // decides.
-  std::vector<std::int64_t> with_uz;
+  const std::string along = name == "laplace" ? "t" : "uz";
+  std::vector<std::int64_t> having;
   for (Index e = 0; e < model.rows(); ++e) {
-    if (model.dof[static_cast<std::size_t>(e)] == "uz")
-      with_uz.push_back(model.node[static_cast<std::size_t>(e)]);
+    if (model.dof[static_cast<std::size_t>(e)] == along)
+      having.push_back(model.node[static_cast<std::size_t>(e)]);
   }
-  const std::int64_t pushed = with_uz.at(with_uz.size() / 2);
-  const Index at = model.equation(pushed, "uz");
+  const std::int64_t pushed = having.at(having.size() / 2);
+  const Index at = model.equation(pushed, along);
   model.entries.push_back({at, at, -4 * model.diagonal(at)});
-  made.expected.push_back({Cause::kNegativeSpring, 1, base, base + kStep, {pushed}, "uz"});
-  append(Fault::kLoosePart);
-  made.expected.push_back({Cause::kLoosePart, 6, base, base + kStep, {}, {}, true});
+  made.expected.push_back({Cause::kNegativeSpring, 1, base, base + kStep, {pushed}, along});
+  if (knows_fault(name, "loose-part")) {
+    append(Fault::kLoosePart);
+    made.expected.push_back({Cause::kLoosePart, 6, base, base + kStep, {}, {}, true});
+  } else {
+    // In a plane a body has three motions, a field of temperatures or the like one; a multiplier of the
+    // saddle keeps one face level.
+    append(Fault::kFree);
+    made.expected.push_back({Cause::kLoosePart,
+                             name == "column"    ? 3
+                             : name == "laplace" ? 1
+                                                 : 5,
+                             base, base + kStep});
+  }
+  if (knows_fault(name, "repeated-tie")) {
+    append(Fault::kRepeatedTie);
+    made.expected.push_back(
+        {Cause::kRedundantConstraint, added_ties(name, unknowns, Fault::kRepeatedTie), base, base + kStep});
+  }
   if (knows_fault(name, "hinge")) {
     append(Fault::kHinge);
     // A storey on hinges sways two ways and twists; a block on one edge turns.
@@ -88,11 +123,12 @@ inline Combination combination_of(const std::string& name, Offset unknowns, unsi
   // Places that are not those of a drawing: each coordinate a little off, but seams stay seams.
   std::map<std::array<double, 3>, std::array<double, 3>> jittered;
   std::mt19937 random(seed);
-  std::uniform_real_distribution<double> off(-1e-9, 1e-9);
+  std::uniform_real_distribution<double> off(-1, 1);
+  for (Triplet& entry : model.entries) entry.value *= 1 + jitter.entry * off(random);
   for (auto& [node, p] : model.place) {
     auto [where, fresh] = jittered.try_emplace(p, p);
     if (fresh) {
-      for (double& c : where->second) c += off(random);
+      for (double& c : where->second) c += jitter.place * off(random);
     }
     p = where->second;
   }

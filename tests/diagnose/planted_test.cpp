@@ -254,10 +254,20 @@ TEST_P(Combined, EveryDefectIsNamedApartWithItsNodes) {
 INSTANTIATE_TEST_SUITE_P(Specimens, Combined,
                          testing::Values(Size{"solid", 500}, Size{"solid", 4000}, Size{"plate", 600},
                                          Size{"plate", 6000}, Size{"frame", 600}, Size{"frame", 4000},
-                                         Size{"lattice", 900}),
+                                         Size{"lattice", 900}, Size{"saddle", 900}, Size{"column", 600},
+                                         Size{"laplace", 600}),
                          [](const auto& given) {
                            return given.param.name + std::string("_") + std::to_string(given.param.unknowns);
                          });
+
+/// Places written to six decimals and entries to twelve digits: what is zero is so at the resolution only.
+TEST(CombinedRounded, EveryDefectIsNamedApartWithItsNodes) {
+  for (const char* name : {"solid", "plate", "frame", "lattice", "saddle"}) {
+    SCOPED_TRACE(name);
+    const Combination made = combination_of(name, 900, 3, {1e-6, 1e-12});
+    expect_planted(made, ask(made.model));
+  }
+}
 
 /// All at once, in one model of four parts: hinge, loose part with its seam, soft spring, rotations without
 /// stiffness, a negative spring, an unattached dof.
@@ -390,6 +400,42 @@ TEST(PlantedNames, DamagedTablesAreLeftOutWithANote) {
   EXPECT_EQ(zero, 6);
   request.input.dofs = "/no/such/dofs.csv";
   EXPECT_TRUE(warned(answer(run_locate(request, {})), "dof-map-unusable"));
+}
+
+/// Multipliers that nobody listed are not faults of the structure.
+TEST(PlantedNames, MultipliersLostWithADamagedMapAreNotNamedAsFaults) {
+  PlantedModel model;
+  model.append(specimen_with("saddle", 900, Fault::kRepeatedTie), 0, 0);
+  ModelFiles files;
+  Request request = model.request(files);
+  request.input.multipliers.reset();
+  request.input.dofs = files.text("cut.csv", "equation,node,dof\n1,7,ux\n2,7\n");
+  const Outcome outcome = answer(run_locate(request, {}));
+  EXPECT_TRUE(warned(outcome, "dof-map-unusable"));
+  ASSERT_TRUE(outcome.located);
+  const auto ties = std::count(model.dof.begin(), model.dof.end(), "multiplier");
+  EXPECT_EQ(outcome.check->inertia.negative + outcome.check->inertia.zero, ties);
+  Index negative = 0, zero = 0;
+  for (const Direction& d : outcome.located->directions) {
+    EXPECT_EQ(d.cause, d.sign < 0 ? Cause::kUnresolved : Cause::kRedundantConstraint) << d.explanation;
+    (d.sign < 0 ? negative : zero) += d.count;
+    if (d.sign < 0) {
+      EXPECT_NE(d.remedy.find("--multipliers"), std::string::npos) << d.remedy;
+    }
+  }
+  EXPECT_EQ(negative, outcome.check->inertia.negative);
+  EXPECT_EQ(zero, outcome.check->inertia.zero);
+}
+
+TEST(PlantedNames, PlacesWithoutZOfASolidAreLeftOut) {
+  PlantedModel model;
+  model.append(specimen_with("solid", 900, Fault::kLoosePart), 0, 0);
+  for (auto& [node, p] : model.place) p[2] = 0;
+  const Outcome outcome = ask(model);
+  EXPECT_TRUE(warned(outcome, "nodes-unusable"));
+  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
+  EXPECT_EQ(outcome.located->directions[0].cause, Cause::kLoosePart);
+  EXPECT_EQ(outcome.located->directions[0].count, 6);
 }
 
 TEST(Located, LongColumnIsUnresolvedNotAMechanism) {

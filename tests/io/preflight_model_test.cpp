@@ -93,18 +93,27 @@ struct Row {
 TEST(PreflightNodes, FarAndCoincidentPlaces) {
   Row row;
   for (int i = 0; i < 50; ++i) row.add(i + 1, i);
-  EXPECT_TRUE(inspect_nodes(row.matrix(), row.dofs, row.nodes, "nodes.csv").empty());
+  EXPECT_TRUE(inspect_nodes(row.matrix(), row.dofs, {}, row.nodes, "nodes.csv").empty());
   row.add(51, 7);        // at node 8
   row.add(52, 49000.0);  // millimetres among metres
-  const auto warnings = inspect_nodes(row.matrix(), row.dofs, row.nodes, "nodes.csv");
+  const auto warnings = inspect_nodes(row.matrix(), row.dofs, {}, row.nodes, "nodes.csv");
   const Warning* far = testing::find_warning(warnings, "far-coordinates");
   ASSERT_NE(far, nullptr);
   EXPECT_NE(far->message.find("52"), std::string::npos);
   const Warning* seam = testing::find_warning(warnings, "coincident-nodes");
   ASSERT_NE(seam, nullptr);
   EXPECT_NE(seam->message.find("8 with 51"), std::string::npos) << seam->message;
+  // Tied by a multiplier, which lies at the same place itself: no seam.
+  Row tied = row;
+  tied.dofs.append(1000, "multiplier");
+  tied.nodes.append(1000, {7, 0, 0});
+  tied.entries.push_back({104, 14, 1});
+  tied.entries.push_back({104, 100, -1});
+  EXPECT_FALSE(found(inspect_nodes(tied.matrix(), tied.dofs, {104}, tied.nodes, "n"), "coincident-nodes"));
+  tied.entries.back() = {104, 98, -1};  // another node
+  EXPECT_TRUE(found(inspect_nodes(tied.matrix(), tied.dofs, {104}, tied.nodes, "n"), "coincident-nodes"));
   row.entries.push_back({100, 14, -1});  // connected: no seam
-  EXPECT_FALSE(found(inspect_nodes(row.matrix(), row.dofs, row.nodes, "nodes.csv"), "coincident-nodes"));
+  EXPECT_FALSE(found(inspect_nodes(row.matrix(), row.dofs, {}, row.nodes, "nodes.csv"), "coincident-nodes"));
 }
 
 TEST(PreflightNodes, MissingPlacesAndPartners) {
@@ -117,7 +126,8 @@ TEST(PreflightNodes, MissingPlacesAndPartners) {
   ASSERT_EQ(partners.size(), 1U);
   EXPECT_EQ(partners[0].code, "missing-partners");
   EXPECT_NE(partners[0].message.find("60"), std::string::npos);
-  EXPECT_TRUE(found(inspect_nodes(row.matrix(), row.dofs, row.nodes, "nodes.csv"), "nodes-without-place"));
+  EXPECT_TRUE(
+      found(inspect_nodes(row.matrix(), row.dofs, {}, row.nodes, "nodes.csv"), "nodes-without-place"));
 }
 
 TEST(Coincident, PairsAgreeWithEveryPairTried) {

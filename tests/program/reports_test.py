@@ -11,7 +11,7 @@ import xml.etree.ElementTree
 
 from program import ProgramTest, read_json
 
-VOID = {"meta", "br", "hr", "img", "input", "link", "path", "circle", "rect"}
+VOID = {"meta", "br", "wbr", "hr", "img", "input", "link", "path", "circle", "rect"}
 
 
 class Outline(html.parser.HTMLParser):

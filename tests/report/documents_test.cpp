@@ -35,6 +35,17 @@ Outcome drawn() {
   picture.place = {{0, 0, 0}, {1, 0, 0}, {1, 1, 0}, {0, 0, 1}};
   picture.links = {{0, 1}, {1, 2}};
   picture.component = {1, 1, 1, 0};
+  LocateOutcome& located = *outcome.located;
+  located.accuracy = samples::nothing_located().located->accuracy;
+  located.accuracy->by_node = {1.5F, 9.2F, -1, 3};
+  located.accuracy->held_directions = 8;
+  located.accuracy->held = {{4411, "ux", 5, 0}};
+  located.accuracy_note =
+      "8 zero directions are held for this, each at one equation that it moves: along a zero direction no "
+      "digit "
+      "is left, and the figures are those of the structure so held.";
+  outcome.tables = {{"dofs", "model/dofs.csv", std::string(64, 'd')},
+                    {"nodes", "model/nodes.csv", std::string(64, 'e')}};
   outcome.located->directions[1].shape = {{1, 0, 0}, {1, 0, 0}, {1, 0, 0}, {0, 0, 0}};
   return outcome;
 }

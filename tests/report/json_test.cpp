@@ -25,31 +25,19 @@ std::vector<std::string> keys_of(const Json& object) {
 }
 
 TEST(Json, KeysOfACheckInTheirOrder) {
-  const std::vector<std::string> expected{"schema_version",
-                                          "program",
-                                          "command",
-                                          "arguments",
-                                          "title",
-                                          "reference",
-                                          "inputs",
-                                          "host",
-                                          "rows_analysed",
-                                          "rows_struck",
-                                          "in_words",
-                                          "verdict",
-                                          "verdict_for_all_roundings",
-                                          "inertia",
-                                          "certificate",
-                                          "constrained",
-                                          "witness",
-                                          "risk",
-                                          "risk_allowed",
-                                          "seed",
-                                          "warnings",
-                                          "not_checked",
-                                          "work",
-                                          "memory_bytes",
-                                          "timings_seconds"};
+  const std::vector<std::string> expected{"schema_version", "program",
+                                          "command",        "arguments",
+                                          "title",          "reference",
+                                          "inputs",         "tables",
+                                          "host",           "rows_analysed",
+                                          "rows_struck",    "in_words",
+                                          "verdict",        "verdict_for_all_roundings",
+                                          "inertia",        "certificate",
+                                          "constrained",    "witness",
+                                          "risk",           "risk_allowed",
+                                          "seed",           "warnings",
+                                          "not_checked",    "work",
+                                          "memory_bytes",   "timings_seconds"};
   EXPECT_EQ(keys_of(document_of(samples::definite())), expected);
   EXPECT_EQ(keys_of(document_of(samples::unresolved())), expected);
 }

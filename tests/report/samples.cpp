@@ -197,7 +197,7 @@ Outcome nothing_located() {
   located.components = {{29796, 4966, 0, {}}};
   located.mass = MassTotals{{1000, 1000, 900}, {}};
   LocalAccuracy& accuracy = located.accuracy.emplace();
-  accuracy.method = "Estimate from Gaussian vectors";
+  accuracy.method = "estimated with Gaussian vectors";
   accuracy.vectors = 32;
   accuracy.typical = 1.5;
   accuracy.largest = 8.25;
