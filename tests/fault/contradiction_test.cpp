@@ -1,6 +1,6 @@
-// Signs of pivots that are counted wrong below everything that is certified: no certificate can notice, so the staircase
-// must, and give out both certificates instead of an answer. The linker puts the wrong count in place of the right one
-// (CMakeLists.txt).
+// Signs of pivots that are counted wrong below everything that is certified: no certificate can notice, so
+// the staircase must, and give out both certificates instead of an answer. The linker puts the wrong count in
+// place of the right one (CMakeLists.txt).
 #include <gtest/gtest.h>
 
 #include <atomic>
@@ -11,15 +11,18 @@
 
 namespace {
 
-/// From this many factorized fronts on every negative pivot is called positive; as if the memory of a counter were bad.
+/// From this many factorized fronts on every negative pivot is called positive; as if the memory of a counter
+/// were bad.
 std::atomic<long> lie_from{-1}, fronts{0};
 
 }  // namespace
 
-extern "C" stanchion::SignCount __real__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi(  // NOLINT: the linker's name
+extern "C" stanchion::SignCount
+__real__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi(  // NOLINT: the linker's name
     const stanchion::PivotArrays& pivots, stanchion::Index count);
 
-extern "C" stanchion::SignCount __wrap__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi(  // NOLINT: the linker's name
+extern "C" stanchion::SignCount
+__wrap__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi(  // NOLINT: the linker's name
     const stanchion::PivotArrays& pivots, stanchion::Index count) {
   stanchion::SignCount signs = __real__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi(pivots, count);
   const long number = fronts++;
@@ -55,7 +58,8 @@ TEST(Contradiction, OfTwoCertifiedCountsIsReportedWithBothCertificates) {
   ASSERT_TRUE(right.sweep && right.count);
   EXPECT_TRUE(right.sweep->contradictions.empty());
   EXPECT_NE(exit_code(right, Judgement{}), 5);
-  // The last shift, counted wrong in all of its factorizations, has fewer values below it than the one before.
+  // The last shift, counted wrong in all of its factorizations, has fewer values below it than the one
+  // before.
   int contradicted = 0, other = 0;
   for (long from = 0; from < all; ++from) {
     auto outcome = swept(files, from);
@@ -69,7 +73,8 @@ TEST(Contradiction, OfTwoCertifiedCountsIsReportedWithBothCertificates) {
     for (std::size_t k = 0; as_it_was && k < right.count->counts.size(); ++k)
       as_it_was = outcome->count->counts[k].below == right.count->counts[k].below;
     if (as_it_was) continue;  // the lie came after the last negative pivot
-    // Wrong alike at all shifts, or by so little at the last that the staircase still rises: nothing above can tell.
+    // Wrong alike at all shifts, or by so little at the last that the staircase still rises: nothing above
+    // can tell.
     if (outcome->sweep->contradictions.empty()) continue;
     ++contradicted;
     const Contradiction& pair = outcome->sweep->contradictions.front();
