@@ -45,7 +45,7 @@ export function fresh_id(stem) {
 /// A table with a caption; cells are texts or elements, `right` the number of leading columns set to the right.
 export function table(caption, head, rows, right = 0) {
   const side = (k) => (k < right ? { class: "right" } : {});
-  return el("div", { class: "scroll", tabindex: 0, role: "region", "aria-label": caption },
+  return el("div", { class: "scroll", tabindex: 0, role: "group", "aria-label": caption },
     el("table", null, el("caption", { class: "unseen" }, caption),
       el("thead", null, el("tr", null, head.map((text, k) => el("th", { scope: "col", ...side(k) }, text)))),
       el("tbody", null, rows.map((row) => el("tr", null, row.map((cell, k) => el("td", side(k), cell)))))));
@@ -61,7 +61,7 @@ export function band(title, ...body) {
   const content = body.flat(Infinity).filter(Boolean);
   if (content.length === 0) return null;
   const id = fresh_id("band");
-  return el("section", { class: "band", "aria-labelledby": id }, el("h2", { id }, title), el("div", { class: "inside" }, content));
+  return el("section", { class: "band", role: "group", "aria-labelledby": id }, el("h2", { id }, title), el("div", { class: "inside" }, content));
 }
 
 /// Says it to screen readers without moving anything on the screen.

@@ -316,7 +316,7 @@ export class JobView {
           direction.moving_nodes ? ["takes part", counted(direction.moving_nodes, "node")] : null,
           direction.kind !== "over_stiff_coupling" ? ["held to K", `energy ${rounded(direction.energy)} of what the dofs have by themselves`] : null]),
         ranked.length ? el("details", null, el("summary", null, "The dofs with the largest share"),
-          table(`Shares in cause ${k + 1}`, ["node", "dof", "share", ""], ranked.map((one) => {
+          table(`Shares in cause ${k + 1}`, ["node", "dof", "share", "drawn"], ranked.map((one) => {
             const bar = el("span", { class: "share" });
             bar.style.width = `${100 * one.share / most}%`;
             return [one.node ?? "-", one.dof, percent(one.share), el("span", { class: "share-track", "aria-hidden": "true" }, bar)];
