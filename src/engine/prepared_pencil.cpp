@@ -266,10 +266,19 @@ TripletMatrix PreparedPencil::formed(double factor, double offset) const {
   return triplets;
 }
 
+/// Of one count among others: with its factor kept, where the relative test may be used.
+Offset PreparedPencil::bytes_of_one_count() const {
+  return extended_ ? counting_bytes() : std::max(analysis_.forecast.peak_bytes_solve, counting_bytes());
+}
+
 int PreparedPencil::side_by_side(int most) const {
-  const Offset each = extended_ ? counting_bytes() : analysis_.forecast.peak_bytes_solve;
-  const Offset room = bytes_for_factor();
-  return static_cast<int>(std::clamp<Offset>(each > 0 ? room / each : most, 1, std::max(most, 1)));
+  const Offset each = with_allowance(bytes_of_one_count()), room = bytes_for_factor();
+  return static_cast<int>(std::clamp<Offset>(room / each, 1, std::max(most, 1)));
+}
+
+void PreparedPencil::forecast_side_by_side(int many, Outcome& outcome) const {
+  const Offset together = resident_bytes() + many * with_allowance(bytes_of_one_count());
+  outcome.memory.forecast = std::max(outcome.memory.forecast, together);
 }
 
 Result<std::optional<DefiniteBase>> PreparedPencil::definite_base(double factor, double smallest_eigenvalue,

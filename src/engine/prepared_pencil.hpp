@@ -64,6 +64,9 @@ class PreparedPencil {
   /// How many factorizations may run side by side, each with the forecast memory, at most `most`.
   int side_by_side(int most) const;
 
+  /// Books into `outcome` what `many` of them may take together.
+  void forecast_side_by_side(int many, Outcome& outcome) const;
+
   /// K with what is added plus `factor` times the second matrix, definite, with its factor kept; nothing when
   /// it is not definite. `smallest_eigenvalue`: a proved bound of it, or 0. Charged to the document where a
   /// test is needed. The base refers to this pencil and to `pool`.
@@ -136,6 +139,7 @@ class PreparedPencil {
                                   RiskBudget& risk, ThreadPool& pool, Outcome& outcome) const;
   Status cannot_keep_factor(Offset needed, const Outcome& outcome) const;
   Offset counting_bytes() const;
+  Offset bytes_of_one_count() const;
   Offset bytes_for_factor() const;
 
   Analysis analysis_;

@@ -75,6 +75,7 @@ Status CountRunner::work_all(std::vector<Task>& tasks) {
     lane(1, pool_);
     return status;
   }
+  counter_.pencil().forecast_side_by_side(lanes, outcome_);
   std::vector<std::thread> threads;
   threads.reserve(static_cast<std::size_t>(lanes));
   for (int k = 0; k < lanes; ++k) {
