@@ -37,7 +37,7 @@ struct BlockLayout {
     const Index block = column / width, begin = block * width;
     return block_offset(block) + Offset{column - begin} * leading_dimension(block) + (row - begin);
   }
-  /// Doubles needed.
+  /// Entries needed.
   Offset size() const {
     if (order == 0) return 0;
     const Index last = blocks() - 1;
@@ -45,7 +45,7 @@ struct BlockLayout {
   }
 };
 
-constexpr Index kFrontBlock = 192;  ///< columns of a front updated together; a multiple of kMostRowStrip
+constexpr Index kFrontBlock = 192;  ///< columns of a front updated together; a multiple of most_row_strip()
 
 /// Layout of a front of `order` rows: tall blocks for the matrix products.
 inline BlockLayout front_layout(Index order) {
@@ -57,19 +57,21 @@ inline BlockLayout contribution_layout(Index order) {
   return {order, std::clamp<Index>((order / 8 + 15) / 16 * 16, 16, kFrontBlock)};
 }
 
-/// Doubles of a waiting contribution block: its entries, its row bounds, its row sums, its images and their
+/// Numbers of a waiting contribution block: its entries, its row bounds, its row sums, its images and their
 /// bounds.
-inline Offset contribution_doubles(Index order) {
+inline Offset contribution_numbers(Index order) {
   return contribution_layout(order).size() + 4 * Offset{order};
 }
 
 /// A block-lower matrix: layout and storage (not owned).
-struct BlockLower {
+template <class Scalar>
+struct BlockLowerOf {
   BlockLayout layout;
-  double* data = nullptr;
+  Scalar* data = nullptr;
 
-  double& at(Index row, Index column) const { return data[layout.offset(row, column)]; }
-  double* column(Index row, Index column_number) const { return data + layout.offset(row, column_number); }
+  Scalar& at(Index row, Index column) const { return data[layout.offset(row, column)]; }
+  Scalar* column(Index row, Index column_number) const { return data + layout.offset(row, column_number); }
 };
+using BlockLower = BlockLowerOf<double>;
 
 }  // namespace stanchion

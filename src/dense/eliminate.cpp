@@ -7,7 +7,6 @@ namespace stanchion {
 namespace {
 
 constexpr Index kPieceRows = kFrontBlock;  ///< rows beyond the panel handled as one piece
-constexpr double kUnit = 0x1p-53;
 // Parts of the sums over columns of a tile: of |L|, of |A21|, of L with the signs of the fault vector; the
 // largest |w|.
 constexpr Index kSizes = 0, kOperand = kTileWidth, kSigned = 2 * kTileWidth, kSums = 3 * kTileWidth;
@@ -21,10 +20,11 @@ struct Panel {
   Index full_end;  ///< end of the columns in this block that were candidates at first
 };
 
+template <class Scalar>
 class FrontEliminator {
  public:
-  FrontEliminator(const Front& front, const EliminationOptions& options, EliminationScratch& scratch,
-                  ThreadPool* team)
+  FrontEliminator(const FrontOf<Scalar>& front, const EliminationOptions& options,
+                  EliminationScratchOf<Scalar>& scratch, ThreadPool* team)
       : front_(front),
         layout_(front_.matrix.layout),
         options_(options),
@@ -34,7 +34,7 @@ class FrontEliminator {
         team_(team) {
     if (front.fault.sign == nullptr) {
       const auto order = static_cast<std::size_t>(layout_.order);
-      std::vector<double>& zeros = scratch_.no_fault_vector;
+      std::vector<Scalar>& zeros = scratch_.no_fault_vector;
       zeros.assign(3 * order, 0);
       front_.fault = {zeros.data(), zeros.data() + order, zeros.data() + 2 * order};
     }
@@ -52,7 +52,7 @@ class FrontEliminator {
       const Index block = layout_.block_of(done);
       const Index panel_end = std::min(layout_.block_end(block), limit);
       Panel panel{done, panel_end, done, panel_end};
-      beyond_.reset(strip_begin(panel_end), layout_.order, panel_end - done);
+      beyond_.reset(strip_begin<Scalar>(panel_end), layout_.order, panel_end - done);
       if (!take_pivots(panel)) return result_;
       update_beyond(panel);
       done = panel.next;
@@ -68,10 +68,11 @@ class FrontEliminator {
   }
 
  private:
+  static const KernelSet<Scalar>& kernels() { return kernels_of<Scalar>(); }
   /// First column whose rows must follow an interchange when columns before `next` are eliminated.
   Index first_live(Index next) const { return options_.keep_factor ? 0 : next; }
-  double* tile() { return scratch_.tile.data(); }
-  double* inverse() { return scratch_.inverse.data(); }
+  Scalar* tile() { return scratch_.tile.data(); }
+  Scalar* inverse() { return scratch_.inverse.data(); }
   Index leading(const Panel& panel) const { return layout_.leading_dimension(layout_.block_of(panel.begin)); }
   PivotArrays pivots_at(Index column) const {
     return {front_.pivots.diagonal + column, front_.pivots.off_diagonal + column,
@@ -101,7 +102,7 @@ class FrontEliminator {
 
   void load_tile(Index at, Index width) {
     for (Index j = 0; j < width; ++j) {
-      const double* source = front_.matrix.column(at + j, at + j);
+      const Scalar* source = front_.matrix.column(at + j, at + j);
       std::copy(source, source + (width - j), tile() + Offset{j} * kTileWidth + j);
     }
   }
@@ -129,7 +130,7 @@ class FrontEliminator {
   }
 
   /// First of `found` columns whose multipliers below the tile are too large, given the largest |w| of each.
-  Index accept(Index at, Index found, const double* largest) {
+  Index accept(Index at, Index found, const Scalar* largest) {
     const double limit = 1 / options_.threshold;
     const PivotArrays pivots = pivots_at(at);
     for (Index k = 0; k < found; ++k) {
@@ -155,18 +156,18 @@ class FrontEliminator {
   };
   Offset pieces(const Panel& panel) const {
     if (panel.full_end == layout_.order) return 1;
-    return 1 + (layout_.order - strip_begin(panel.full_end) + kPieceRows - 1) / kPieceRows;
+    return 1 + (layout_.order - strip_begin<Scalar>(panel.full_end) + kPieceRows - 1) / kPieceRows;
   }
   PieceRows rows_of(const Panel& panel, Index below, Offset piece) const {
     if (piece == 0) return {below, panel.full_end, true};
-    const Index begin = strip_begin(panel.full_end) + static_cast<Index>(piece - 1) * kPieceRows;
+    const Index begin = strip_begin<Scalar>(panel.full_end) + static_cast<Index>(piece - 1) * kPieceRows;
     return {begin, std::min(begin + kPieceRows, layout_.order), false};
   }
   /// W of a piece: the operand and how far its strips lie apart.
-  double* scaled(const Panel& panel, const PieceRows& rows) {
+  Scalar* scaled(const Panel& panel, const PieceRows& rows) {
     return rows.inside ? inside_.right(0, 0) : beyond_.right(rows.begin, panel.next - panel.begin);
   }
-  double* lower(const Panel& panel, const PieceRows& rows) {
+  Scalar* lower(const Panel& panel, const PieceRows& rows) {
     return rows.inside ? inside_.left(0, 0) : beyond_.left(rows.begin, panel.next - panel.begin);
   }
   Index scaled_stride(const PieceRows& rows) const {
@@ -175,11 +176,11 @@ class FrontEliminator {
   Index lower_stride(const PieceRows& rows) const {
     return rows.inside ? inside_.left_stride() : beyond_.left_stride();
   }
-  double* part(Offset piece) { return scratch_.column_parts.data() + piece * kParts; }
+  Scalar* part(Offset piece) { return scratch_.column_parts.data() + piece * kParts; }
 
   /// W = A21 L11^-T of one piece, and the largest |w| of each column.
-  void multiply_piece(const Panel& panel, const PieceRows& rows, Index found, double* largest) {
-    double* w = scaled(panel, rows);
+  void multiply_piece(const Panel& panel, const PieceRows& rows, Index found, Scalar* largest) {
+    Scalar* w = scaled(panel, rows);
     const Index stride = scaled_stride(rows), count = rows.end - rows.begin;
     kernels().multiply_by_upper(front_.matrix.column(rows.begin, panel.next), leading(panel), count,
                                 scratch_.factor.data(), found, w, stride);
@@ -199,7 +200,7 @@ class FrontEliminator {
     for_each_piece(team_, count, [&](Offset piece) {
       multiply_piece(panel, rows_of(panel, below, piece), found, part(piece) + kLargest);
     });
-    double largest[kTileWidth] = {};
+    Scalar largest[kTileWidth] = {};
     for (Offset piece = 0; piece < count; ++piece) {
       for (Index k = 0; k < found; ++k) largest[k] = std::max(largest[k], part(piece)[kLargest + k]);
     }
@@ -212,18 +213,18 @@ class FrontEliminator {
 
   /// L = W D^-1 for all rows below, and the sums that the bounds need: column sums of |L| and of L with
   /// signs, of |A21| (the operand that was multiplied), and its weighted row sums into the row bounds.
-  void divide(const Panel& panel, Index below, Index accepted, const double* weight) {
+  void divide(const Panel& panel, Index below, Index accepted, const Scalar* weight) {
     const Index at = panel.next;
     const Offset count = pieces(panel);
     for_each_piece(team_, count, [&](Offset piece) {
       const PieceRows rows = rows_of(panel, below, piece);
-      double* sums = part(piece);
-      std::fill_n(sums, kSums, 0.0);
+      Scalar* sums = part(piece);
+      std::fill_n(sums, kSums, Scalar{0});
       const Index first = rows.inside ? rows.begin : std::max(rows.begin, panel.full_end);
       kernels().weighted_abs_sums(front_.matrix.column(first, at), leading(panel), rows.end - first, accepted,
                                   weight, front_.row_error + first, sums + kOperand);
       // Rows of the panel are needed in the front while its pivots are taken; others only when they are kept.
-      double* plain = rows.inside ? front_.matrix.column(rows.begin, at) : nullptr;
+      Scalar* plain = rows.inside ? front_.matrix.column(rows.begin, at) : nullptr;
       kernels().divide_strips(scaled(panel, rows), scaled_stride(rows), rows.end - rows.begin, accepted,
                               pivots_at(at), front_.fault.sign + rows.begin, lower(panel, rows),
                               lower_stride(rows), plain, leading(panel), sums + kSizes, sums + kSigned);
@@ -237,9 +238,9 @@ class FrontEliminator {
   /// Writes rows [first, rows.end) of the new columns of L into the front.
   void unpack_lower(const Panel& panel, Index first, const PieceRows& rows, Index accepted) {
     const Index strip = kernels().row_strip;
-    const double* packed = lower(panel, rows);
+    const Scalar* packed = lower(panel, rows);
     for (Index k = 0; k < accepted; ++k) {
-      double* target = front_.matrix.column(first, panel.next + k);
+      Scalar* target = front_.matrix.column(first, panel.next + k);
       for (Index i = first; i < rows.end; ++i) {
         const Index r = i - rows.begin;
         target[i - first] = packed[Offset{r / strip} * lower_stride(rows) + Offset{k} * strip + r % strip];
@@ -249,15 +250,15 @@ class FrontEliminator {
 
   /// weight[k] = 2 gamma sum_j (|X|^T |L11|^T)_kj: what multiplying by the inverted tile X may add to a row
   /// of A21.
-  void inverse_weights(Index accepted, double* column_sum_l, double* weight) {
-    const double gamma = 2 * (accepted + 2) * kUnit;
+  void inverse_weights(Index accepted, Scalar* column_sum_l, Scalar* weight) {
+    const auto gamma = static_cast<Scalar>(2 * (accepted + 2) * Rounding<Scalar>::kUnit);
     for (Index k = 0; k < accepted; ++k) {
-      double sum = 1;
+      Scalar sum = 1;
       for (Index i = k + 1; i < accepted; ++i) sum += std::fabs(tile()[i + Offset{k} * kTileWidth]);
       column_sum_l[k] = sum;
     }
     for (Index k = 0; k < accepted; ++k) {
-      double sum = 0;
+      Scalar sum = 0;
       for (Index i = k; i < accepted; ++i)
         sum += std::fabs(inverse()[i + Offset{k} * kTileWidth]) * column_sum_l[i];
       weight[k] = gamma * sum;
@@ -265,16 +266,16 @@ class FrontEliminator {
   }
 
   /// The same errors seen from the columns of the tile: row_error[j] += 2 gamma (s^T |X|^T |L11|^T)_j.
-  void add_column_errors(Index at, Index accepted, const double* operand_sums) {
-    const double gamma = 2 * (accepted + 2) * kUnit;
-    double through[kTileWidth];
+  void add_column_errors(Index at, Index accepted, const Scalar* operand_sums) {
+    const auto gamma = static_cast<Scalar>(2 * (accepted + 2) * Rounding<Scalar>::kUnit);
+    Scalar through[kTileWidth];
     for (Index i = 0; i < accepted; ++i) {
       through[i] = 0;
       for (Index k = 0; k <= i; ++k)
         through[i] += operand_sums[k] * std::fabs(inverse()[i + Offset{k} * kTileWidth]);
     }
     for (Index j = 0; j < accepted; ++j) {
-      double sum = through[j];
+      Scalar sum = through[j];
       for (Index i = 0; i < j; ++i) sum += through[i] * std::fabs(tile()[j + Offset{i} * kTileWidth]);
       front_.row_error[at + j] += gamma * sum;
     }
@@ -282,12 +283,12 @@ class FrontEliminator {
 
   /// Writes L11 into the front.
   void store_tile(Index at, Index width, Index accepted) {
-    const double* sign = front_.fault.sign + at;
-    double* sums = scratch_.sums.data();
+    const Scalar* sign = front_.fault.sign + at;
+    Scalar* sums = scratch_.sums.data();
     for (Index k = 0; k < accepted; ++k) {
-      const double* source = tile() + Offset{k} * kTileWidth;
-      double* target = front_.matrix.column(at, at + k);
-      double size = 1, signed_sum = sign[k];
+      const Scalar* source = tile() + Offset{k} * kTileWidth;
+      Scalar* target = front_.matrix.column(at, at + k);
+      Scalar size = 1, signed_sum = sign[k];
       for (Index i = k + 1; i < width; ++i) {
         target[i] = source[i];
         size += std::fabs(source[i]);
@@ -303,20 +304,21 @@ class FrontEliminator {
   void add_growth_and_image(const Panel& panel, Index width, Index accepted) {
     const Index at = panel.next;
     const PivotArrays pivots = pivots_at(at);
-    double weight[kTileWidth], step[kTileWidth];
-    const double *g = scratch_.sums.data() + kSizes, *z = scratch_.sums.data() + kSigned;
+    Scalar weight[kTileWidth], step[kTileWidth];
+    const Scalar *g = scratch_.sums.data() + kSizes, *z = scratch_.sums.data() + kSigned;
     for (Index k = 0; k < accepted; ++k) {
-      weight[k] = std::fabs(pivots.diagonal[k]) * g[k];
-      step[k] = pivots.diagonal[k] * z[k];
+      const auto d = static_cast<Scalar>(pivots.diagonal[k]);
+      weight[k] = std::fabs(d) * g[k];
+      step[k] = d * z[k];
       if (pivots.kind[k] == PivotKind::kOne) continue;
       const Index partner = pivots.kind[k] == PivotKind::kTwoFirst ? k + 1 : k - 1;
-      const double b = pivots.off_diagonal[std::min(k, partner)];
+      const auto b = static_cast<Scalar>(pivots.off_diagonal[std::min(k, partner)]);
       weight[k] += std::fabs(b) * g[partner];
       step[k] += b * z[partner];
     }
-    double *growth = front_.growth + at, *image = front_.fault.image + at;
+    Scalar *growth = front_.growth + at, *image = front_.fault.image + at;
     for (Index k = 0; k < accepted; ++k) {
-      const double* column = tile() + Offset{k} * kTileWidth;
+      const Scalar* column = tile() + Offset{k} * kTileWidth;
       growth[k] += weight[k];
       image[k] += step[k];
       for (Index i = k + 1; i < width; ++i) {
@@ -338,10 +340,10 @@ class FrontEliminator {
   /// is in the upper part of the tile.
   void repack_inside(const Panel& panel, Index width, Index accepted) {
     const Index at = panel.next, rest = at + accepted, below = at + width, rows = panel.full_end - rest;
-    std::vector<double> w(static_cast<std::size_t>(rows) * static_cast<std::size_t>(accepted));
+    std::vector<Scalar> w(static_cast<std::size_t>(rows) * static_cast<std::size_t>(accepted));
     const Index strip = kernels().column_strip;
     for (Index k = 0; k < accepted; ++k) {
-      double* target = w.data() + Offset{k} * rows;
+      Scalar* target = w.data() + Offset{k} * rows;
       for (Index i = accepted; i < width; ++i) target[i - accepted] = tile()[k + Offset{i} * kTileWidth];
       for (Index i = below; i < panel.full_end; ++i) {
         const Index r = i - below;
@@ -373,7 +375,7 @@ class FrontEliminator {
                                  begin - rest, 0, front_.matrix.column(begin, rest), leading(panel));
     };
     // The first strip beyond may hold rows of the panel: it goes with them, for it writes to them too.
-    const Index strip = strip_begin(panel.full_end);
+    const Index strip = strip_begin<Scalar>(panel.full_end);
     const Index shared_end =
         strip < panel.full_end ? std::min(strip + kernels().row_strip, layout_.order) : strip;
     for_each_piece(team_, pieces(panel), [&](Offset piece) {
@@ -409,9 +411,9 @@ class FrontEliminator {
       accepted = multiply_and_accept(panel, below, found);
       if (result_.not_finite || accepted == 0) return 0;
     }
-    std::fill(scratch_.sums.begin(), scratch_.sums.end(), 0.0);
+    std::fill(scratch_.sums.begin(), scratch_.sums.end(), Scalar{0});
     if (below < layout_.order) {
-      double column_sum_l[kTileWidth], weight[kTileWidth];
+      Scalar column_sum_l[kTileWidth], weight[kTileWidth];
       inverse_weights(accepted, column_sum_l, weight);
       divide(panel, below, accepted, weight);
       add_column_errors(at, accepted, scratch_.sums.data() + kTileWidth);
@@ -444,24 +446,25 @@ class FrontEliminator {
     return limit - failed;
   }
 
-  Front front_;
+  FrontOf<Scalar> front_;
   const BlockLayout& layout_;
   const EliminationOptions& options_;
-  EliminationScratch& scratch_;
-  EliminatedColumns &beyond_, &inside_;
+  EliminationScratchOf<Scalar>& scratch_;
+  EliminatedColumnsOf<Scalar>&beyond_, &inside_;
   ThreadPool* team_;
   EliminationResult result_;
-  double weight_[kTileWidth], step_[kTileWidth];  ///< |D| |L|^T e and D L^T x of the current tile
+  Scalar weight_[kTileWidth], step_[kTileWidth];  ///< |D| |L|^T e and D L^T x of the current tile
   Index additions_beyond_ = 0;                    ///< to entries beyond the panels, over all panels
   Index most_in_panel_ = 0;                       ///< to entries of one panel, by its own tiles
 };
 
 }  // namespace
 
-void swap_symmetric(const Front& front, Index i, Index j, Index first_kept_column) {
+template <class Scalar>
+void swap_symmetric(const FrontOf<Scalar>& front, Index i, Index j, Index first_kept_column) {
   if (i == j) return;
   if (i > j) std::swap(i, j);
-  const BlockLower& m = front.matrix;
+  const BlockLowerOf<Scalar>& m = front.matrix;
   for (Index k = first_kept_column; k < i; ++k) std::swap(m.at(i, k), m.at(j, k));
   std::swap(m.at(i, i), m.at(j, j));
   for (Index k = i + 1; k < j; ++k) std::swap(m.at(k, i), m.at(j, k));
@@ -470,13 +473,21 @@ void swap_symmetric(const Front& front, Index i, Index j, Index first_kept_colum
   std::swap(front.row_error[i], front.row_error[j]);
   std::swap(front.growth[i], front.growth[j]);
   if (front.fault.sign == nullptr) return;
-  for (double* values : {front.fault.sign, front.fault.image, front.fault.error})
+  for (Scalar* values : {front.fault.sign, front.fault.image, front.fault.error})
     std::swap(values[i], values[j]);
 }
 
-EliminationResult eliminate_front(const Front& front, const EliminationOptions& options,
-                                  EliminationScratch& scratch, ThreadPool* team) {
-  return FrontEliminator(front, options, scratch, team).run();
+template <class Scalar>
+EliminationResult eliminate_front(const FrontOf<Scalar>& front, const EliminationOptions& options,
+                                  EliminationScratchOf<Scalar>& scratch, ThreadPool* team) {
+  return FrontEliminator<Scalar>(front, options, scratch, team).run();
 }
+
+template void swap_symmetric(const FrontOf<double>&, Index, Index, Index);
+template void swap_symmetric(const FrontOf<float>&, Index, Index, Index);
+template EliminationResult eliminate_front(const FrontOf<double>&, const EliminationOptions&,
+                                           EliminationScratchOf<double>&, ThreadPool*);
+template EliminationResult eliminate_front(const FrontOf<float>&, const EliminationOptions&,
+                                           EliminationScratchOf<float>&, ThreadPool*);
 
 }  // namespace stanchion

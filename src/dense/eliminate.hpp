@@ -18,23 +18,26 @@ struct EliminationOptions {
 /// The vector that detects faults: every pivot column l_k with its D adds its share of L D L^T x to the image
 /// of x. A machine that computes right leaves image = A x within the bounds (src/inertia/error_bound.md,
 /// section 9).
-struct FaultVector {
-  double* sign = nullptr;   ///< x, one entry +1 or -1 a row; null: no detection
-  double* image = nullptr;  ///< one per row; shares of L D L^T x are added
-  double* error = nullptr;  ///< one per row: bound on the rounding of `image`; the caller adds to it
+template <class Scalar>
+struct FaultVectorOf {
+  Scalar* sign = nullptr;   ///< x, one entry +1 or -1 a row; null: no detection
+  Scalar* image = nullptr;  ///< one per row; shares of L D L^T x are added
+  Scalar* error = nullptr;  ///< one per row: bound on the rounding of `image`; the caller adds to it
 };
 
 /// A front: rows [0, candidates) may be eliminated, the rest only updated. Nothing is owned.
-struct Front {
-  BlockLower
+template <class Scalar>
+struct FrontOf {
+  BlockLowerOf<Scalar>
       matrix;  ///< in: assembled lower triangle; out: L below eliminated pivots, Schur complement after
   Index candidates = 0;
-  PivotArrays pivots{};         ///< room for `candidates`
-  Index* label = nullptr;       ///< one per row, permuted along (callers put equation positions here)
-  double* row_error = nullptr;  ///< one per row, permuted along; bounds are added here. Never null.
-  double* growth = nullptr;     ///< one per row, zero on entry: gets row sums of |L||D||L^T|. Never null.
-  FaultVector fault{};          ///< permuted along
+  PivotArrays pivots{};           ///< room for `candidates`
+  Index* label = nullptr;         ///< one per row, permuted along (callers put equation positions here)
+  Scalar* row_error = nullptr;    ///< one per row, permuted along; bounds are added here. Never null.
+  Scalar* growth = nullptr;       ///< one per row, zero on entry: gets row sums of |L||D||L^T|. Never null.
+  FaultVectorOf<Scalar> fault{};  ///< permuted along
 };
+using Front = FrontOf<double>;
 
 struct EliminationResult {
   Index eliminated = 0;     ///< leading rows that became pivots; the others wait for the parent
@@ -48,32 +51,37 @@ struct EliminationResult {
 };
 
 /// Scratch of one worker, grown on demand and reused from front to front.
-struct EliminationScratch {
-  EliminatedColumns beyond;  ///< rows beyond the current column block
-  EliminatedColumns inside;  ///< rows of the current column block below the current tile
-  Buffer<double> scaled;     ///< W = L D of pivots found by search
-  std::vector<double> tile, inverse, factor, column_parts, sums;
-  std::vector<double> no_fault_vector;  ///< zeros for a front without one
+template <class Scalar>
+struct EliminationScratchOf {
+  EliminatedColumnsOf<Scalar> beyond;  ///< rows beyond the current column block
+  EliminatedColumnsOf<Scalar> inside;  ///< rows of the current column block below the current tile
+  Buffer<Scalar> scaled;               ///< W = L D of pivots found by search
+  std::vector<Scalar> tile, inverse, factor, column_parts, sums;
+  std::vector<Scalar> no_fault_vector;  ///< zeros for a front without one
   std::vector<Index> permutation;
 
-  Offset doubles() const { return beyond.doubles() + inside.doubles() + scaled.size(); }
+  Offset numbers() const { return beyond.numbers() + inside.numbers() + scaled.size(); }
 };
+using EliminationScratch = EliminationScratchOf<double>;
 
 /// Pivots are taken tile by tile inside a column block: first in the order given, then with complete pivoting
 /// inside the tile; columns whose multipliers exceed the limit are put back and retried later, at last one by
 /// one with a full search (Duff, Hogg, Lopez, SIAM J. Sci. Comput. 42 (2020) C23). Nothing is perturbed. When
 /// no row lies below the candidates, all of them are eliminated. Zero pivots are exact zero columns. `team`
 /// null: this thread alone; the result has the same bits either way. Cost: order^2 x candidates flops.
-EliminationResult eliminate_front(const Front& front, const EliminationOptions& options,
-                                  EliminationScratch& scratch, ThreadPool* team);
+template <class Scalar>
+EliminationResult eliminate_front(const FrontOf<Scalar>& front, const EliminationOptions& options,
+                                  EliminationScratchOf<Scalar>& scratch, ThreadPool* team);
 
 /// Interchanges rows and columns i < j of the front, with their labels and bounds. Columns before
 /// `first_kept_column` are not touched.
-void swap_symmetric(const Front& front, Index i, Index j, Index first_kept_column);
+template <class Scalar>
+void swap_symmetric(const FrontOf<Scalar>& front, Index i, Index j, Index first_kept_column);
 
 /// The last resort for candidates [from, candidates): threshold partial pivoting with a search of whole
 /// columns. Returns the first row that was not eliminated. Cost: (candidates - from)^2 x order.
-Index eliminate_by_search(const Front& front, Index from, const EliminationOptions& options,
-                          EliminationScratch& scratch, ThreadPool* team, EliminationResult& result);
+template <class Scalar>
+Index eliminate_by_search(const FrontOf<Scalar>& front, Index from, const EliminationOptions& options,
+                          EliminationScratchOf<Scalar>& scratch, ThreadPool* team, EliminationResult& result);
 
 }  // namespace stanchion

@@ -14,10 +14,11 @@ struct ColumnMaxima {
   bool finite = true;
 };
 
+template <class Scalar>
 class SearchEliminator {
  public:
-  SearchEliminator(const Front& front, Index from, const EliminationOptions& options,
-                   EliminationScratch& scratch, ThreadPool* team, EliminationResult& result)
+  SearchEliminator(const FrontOf<Scalar>& front, Index from, const EliminationOptions& options,
+                   EliminationScratchOf<Scalar>& scratch, ThreadPool* team, EliminationResult& result)
       : front_(front),
         m_(front.matrix),
         options_(options),
@@ -44,10 +45,10 @@ class SearchEliminator {
   }
 
  private:
-  double entry(Index i, Index j) const { return i >= j ? m_.at(i, j) : m_.at(j, i); }
+  Scalar entry(Index i, Index j) const { return i >= j ? m_.at(i, j) : m_.at(j, i); }
   Index order() const { return m_.layout.order; }
   Index leading_scaled() const { return m_.layout.padded; }
-  double& scaled(Index row, Index pivot) {
+  Scalar& scaled(Index row, Index pivot) {
     return scratch_.scaled[Offset{pivot - batch_begin_} * leading_scaled() + (row - batch_begin_)];
   }
 
@@ -79,14 +80,15 @@ class SearchEliminator {
       take_zero(j);
       return 1;
     }
-    if (std::fabs(diagonal) >= kLeastPivot && own.largest <= limit * std::fabs(diagonal)) {
+    if (std::fabs(diagonal) >= Rounding<Scalar>::kLeastPivot && own.largest <= limit * std::fabs(diagonal)) {
       take_one(j);
       return 1;
     }
     const Index partner = own.candidate_row;
     if (partner < 0) return 0;
     const double a = diagonal, b = entry(partner, j), c = m_.at(partner, partner);
-    if (std::fabs(b) < kLeastPivot || std::max(std::fabs(a), std::fabs(c)) > kTwoByTwoShare * std::fabs(b))
+    if (std::fabs(b) < Rounding<Scalar>::kLeastPivot ||
+        std::max(std::fabs(a), std::fabs(c)) > kTwoByTwoShare * std::fabs(b))
       return 0;
     const double first = maxima(j, partner).largest, second = maxima(partner, j).largest;
     const double determinant = std::fabs(b) * std::fabs(b * (1 - (a / b) * (c / b)));
@@ -118,12 +120,12 @@ class SearchEliminator {
   void take_one(Index j) {
     move_to_front(j, next_);
     const Index k = next_;
-    double* column = m_.column(k, k) - k;
-    const double pivot = column[k], inverse = 1 / pivot;
+    Scalar* column = m_.column(k, k) - k;
+    const Scalar pivot = column[k], inverse = 1 / pivot;
     front_.pivots.diagonal[k] = pivot;
     front_.pivots.off_diagonal[k] = 0;
     front_.pivots.kind[k] = PivotKind::kOne;
-    double size = 1, signed_sum = front_.fault.sign[k];
+    Scalar size = 1, signed_sum = front_.fault.sign[k];
     for (Index i = k + 1; i < order(); ++i) {
       scaled(i, k) = column[i];
       column[i] *= inverse;
@@ -131,7 +133,7 @@ class SearchEliminator {
       signed_sum += column[i] * front_.fault.sign[i];
     }
     column[k] = 1;
-    const double weight = std::fabs(pivot) * size, step = pivot * signed_sum;
+    const Scalar weight = std::fabs(pivot) * size, step = pivot * signed_sum;
     add_growth_and_image(column, k, weight, step);
     note_image(order() - k);
     ++next_;
@@ -142,25 +144,25 @@ class SearchEliminator {
     const Index k = next_;
     move_to_front(j, k);
     move_to_front(partner == k ? j : partner, k + 1);
-    const double a = m_.at(k, k), b = m_.at(k + 1, k), c = m_.at(k + 1, k + 1);
+    const Scalar a = m_.at(k, k), b = m_.at(k + 1, k), c = m_.at(k + 1, k + 1);
     front_.pivots.diagonal[k] = a;
     front_.pivots.diagonal[k + 1] = c;
     front_.pivots.off_diagonal[k] = b;
     front_.pivots.off_diagonal[k + 1] = 0;
     front_.pivots.kind[k] = PivotKind::kTwoFirst;
     front_.pivots.kind[k + 1] = PivotKind::kTwoSecond;
-    double* first = m_.column(k, k) - k;
-    double* second = m_.column(k + 1, k + 1) - (k + 1);
+    Scalar* first = m_.column(k, k) - k;
+    Scalar* second = m_.column(k + 1, k + 1) - (k + 1);
     const Index below = k + 2;
     for (Index i = below; i < order(); ++i) {
       scaled(i, k) = first[i];
       scaled(i, k + 1) = second[i];
     }
-    double sums[2] = {1, 1}, z[2] = {front_.fault.sign[k], front_.fault.sign[k + 1]};
+    Scalar sums[2] = {1, 1}, z[2] = {front_.fault.sign[k], front_.fault.sign[k + 1]};
     // Backward stable since |a|, |c| <= kTwoByTwoShare |b| (src/inertia/error_bound.md, section 2).
-    const double a_over_b = a / b, c_over_b = c / b, inverse = 1 / (b * (a_over_b * c_over_b - 1));
+    const Scalar a_over_b = a / b, c_over_b = c / b, inverse = 1 / (b * (a_over_b * c_over_b - 1));
     for (Index i = below; i < order(); ++i) {
-      const double f = first[i], g = second[i];
+      const Scalar f = first[i], g = second[i];
       first[i] = (c_over_b * f - g) * inverse;
       second[i] = (a_over_b * g - f) * inverse;
       sums[0] += std::fabs(first[i]);
@@ -170,10 +172,10 @@ class SearchEliminator {
     }
     first[k] = second[k + 1] = 1;
     first[k + 1] = 0;
-    const double weight[2] = {std::fabs(a) * sums[0] + std::fabs(b) * sums[1],
+    const Scalar weight[2] = {std::fabs(a) * sums[0] + std::fabs(b) * sums[1],
                               std::fabs(b) * sums[0] + std::fabs(c) * sums[1]};
-    const double step[2] = {a * z[0] + b * z[1], b * z[0] + c * z[1]};
-    const double* column[2] = {first, second};
+    const Scalar step[2] = {a * z[0] + b * z[1], b * z[0] + c * z[1]};
+    const Scalar* column[2] = {first, second};
     for (Index p = 0; p < 2; ++p) {
       add_growth_and_image(column[p], k + p, weight[p], step[p]);
       note_image(order() - k);
@@ -184,7 +186,7 @@ class SearchEliminator {
   }
 
   /// growth_i += |l_i| weight, image_i += l_i step, from row `pivot` on; `column` is indexed by rows.
-  void add_growth_and_image(const double* column, Index pivot, double weight, double step) {
+  void add_growth_and_image(const Scalar* column, Index pivot, Scalar weight, Scalar step) {
     for (Index i = pivot; i < order(); ++i) {
       front_.growth[i] += std::fabs(column[i]) * weight;
       front_.fault.image[i] += column[i] * step;
@@ -201,10 +203,10 @@ class SearchEliminator {
   void update_candidates(Index pivot, Index count) {
     ++searches_;
     for (Index p = pivot; p < pivot + count; ++p) {
-      const double* lower = m_.column(p, p) - p;
+      const Scalar* lower = m_.column(p, p) - p;
       for (Index j = next_; j < front_.candidates; ++j) {
-        double* column = m_.column(j, j) - j;
-        const double w = scaled(j, p);
+        Scalar* column = m_.column(j, j) - j;
+        const Scalar w = scaled(j, p);
         if (w == 0) continue;
         for (Index i = j; i < order(); ++i) column[i] -= lower[i] * w;
       }
@@ -231,10 +233,10 @@ class SearchEliminator {
     batch_begin_ = next_;
   }
 
-  const Front& front_;
-  const BlockLower& m_;
+  const FrontOf<Scalar>& front_;
+  const BlockLowerOf<Scalar>& m_;
   const EliminationOptions& options_;
-  EliminationScratch& scratch_;
+  EliminationScratchOf<Scalar>& scratch_;
   ThreadPool* team_;
   EliminationResult& result_;
   Index next_, batch_begin_;
@@ -243,11 +245,18 @@ class SearchEliminator {
 
 }  // namespace
 
-Index eliminate_by_search(const Front& front, Index from, const EliminationOptions& options,
-                          EliminationScratch& scratch, ThreadPool* team, EliminationResult& result) {
+template <class Scalar>
+Index eliminate_by_search(const FrontOf<Scalar>& front, Index from, const EliminationOptions& options,
+                          EliminationScratchOf<Scalar>& scratch, ThreadPool* team,
+                          EliminationResult& result) {
   const Offset needed = Offset{front.matrix.layout.padded} * kFrontBlock;
-  if (scratch.scaled.size() < needed) scratch.scaled = Buffer<double>(needed);
-  return SearchEliminator(front, from, options, scratch, team, result).run();
+  if (scratch.scaled.size() < needed) scratch.scaled = Buffer<Scalar>(needed);
+  return SearchEliminator<Scalar>(front, from, options, scratch, team, result).run();
 }
+
+template Index eliminate_by_search(const FrontOf<double>&, Index, const EliminationOptions&,
+                                   EliminationScratchOf<double>&, ThreadPool*, EliminationResult&);
+template Index eliminate_by_search(const FrontOf<float>&, Index, const EliminationOptions&,
+                                   EliminationScratchOf<float>&, ThreadPool*, EliminationResult&);
 
 }  // namespace stanchion

@@ -1,4 +1,5 @@
-// The loops behind dense/kernels.hpp, included once per instruction set with STANCHION_KERNEL_ISA defined.
+// The loops behind dense/kernels.hpp, included once per instruction set and scalar with STANCHION_KERNEL_ISA
+// defined, and STANCHION_KERNEL_SINGLE for single precision.
 // Everything here is local to its translation unit: no inline function of a header may be instantiated with
 // instructions the processor might lack.
 
@@ -7,10 +8,20 @@
 namespace stanchion {
 namespace {
 
-inline double magnitude(double x) {
-  return __builtin_fabs(x);
+#ifdef STANCHION_KERNEL_SINGLE
+typedef float Real;
+typedef int RealBits;
+#else
+typedef double Real;
+typedef long long RealBits;
+#endif
+constexpr Real kLeastRealPivot = Rounding<Real>::kLeastPivot;
+constexpr Real kInfinity = static_cast<Real>(__builtin_inf());
+
+inline Real magnitude(Real x) {
+  return static_cast<Real>(__builtin_fabs(x));
 }
-inline bool finite(double x) {
+inline bool finite(Real x) {
   return __builtin_isfinite(x);
 }
 
@@ -23,92 +34,92 @@ inline bool finite(double x) {
 #else
 #define STANCHION_LANE_BYTES 16
 #endif
-typedef double Lanes __attribute__((vector_size(STANCHION_LANE_BYTES)));
-typedef long long LaneBits __attribute__((vector_size(STANCHION_LANE_BYTES)));
-constexpr Index kLanes = STANCHION_LANE_BYTES / 8;
+typedef Real Lanes __attribute__((vector_size(STANCHION_LANE_BYTES)));
+typedef RealBits LaneBits __attribute__((vector_size(STANCHION_LANE_BYTES)));
+constexpr Index kLanes = STANCHION_LANE_BYTES / sizeof(Real);
 
-inline Lanes load(const double* p) {
+inline Lanes load(const Real* p) {
   Lanes v;
   __builtin_memcpy(&v, p, sizeof(v));
   return v;
 }
-inline void store(double* p, Lanes v) {
+inline void store(Real* p, Lanes v) {
   __builtin_memcpy(p, &v, sizeof(v));
 }
 inline Lanes magnitude(Lanes v) {
-  const LaneBits mask = LaneBits{} + 0x7fffffffffffffffLL;
+  const LaneBits mask = LaneBits{} + static_cast<RealBits>(~(RealBits{1} << (8 * sizeof(Real) - 1)));
   return (Lanes)((LaneBits)v & mask);
 }
-inline double sum_of(Lanes v) {
-  double sum = v[0];
+inline Real sum_of(Lanes v) {
+  Real sum = v[0];
   for (Index lane = 1; lane < kLanes; ++lane) sum += v[lane];
   return sum;
 }
 
 /// Largest |x_i|; infinite when one is not a number.
-inline double abs_max(const double* x, Index count) {
+inline Real abs_max(const Real* x, Index count) {
   Lanes largest{}, probe{};
   Index i = 0;
   for (; i + kLanes <= count; i += kLanes) {
     const Lanes v = load(x + i), m = magnitude(v);
     largest = m > largest ? m : largest;
-    probe += v * 0.0;
+    probe += v * Real{0};
   }
-  double result = 0, check = sum_of(probe);
+  Real result = 0, check = sum_of(probe);
   for (Index lane = 0; lane < kLanes; ++lane) result = largest[lane] > result ? largest[lane] : result;
   for (; i < count; ++i) {
     result = magnitude(x[i]) > result ? magnitude(x[i]) : result;
-    check += x[i] * 0.0;
+    check += x[i] * Real{0};
   }
-  return check == 0 ? result : __builtin_inf();
+  return check == 0 ? result : kInfinity;
 }
 
-inline double abs_sum_of(const double* x, Index count) {
+inline Real abs_sum_of(const Real* x, Index count) {
   Lanes sum{};
   Index i = 0;
   for (; i + kLanes <= count; i += kLanes) sum += magnitude(load(x + i));
-  double result = sum_of(sum);
+  Real result = sum_of(sum);
   for (; i < count; ++i) result += magnitude(x[i]);
   return result;
 }
 
-Index factor_tile(double* tile, Index leading, Index width, bool definite, double growth_limit,
+Index factor_tile(Real* tile, Index leading, Index width, bool definite, double growth_limit,
                   PivotArrays pivots) {
   for (Index k = 0; k < width; ++k) {
-    double* column = tile + static_cast<long>(k) * leading;
-    const double pivot = column[k];
-    if (!finite(pivot) || (definite ? pivot : magnitude(pivot)) < kLeastPivot) return k;
+    Real* column = tile + static_cast<long>(k) * leading;
+    const Real pivot = column[k];
+    if (!finite(pivot) || (definite ? pivot : magnitude(pivot)) < kLeastRealPivot) return k;
     if (!definite) {
-      const double largest = abs_max(column + k + 1, width - k - 1);
+      const Real largest = abs_max(column + k + 1, width - k - 1);
       if (!(largest <= growth_limit * magnitude(pivot))) return k;
     }
     pivots.diagonal[k] = pivot;
     pivots.off_diagonal[k] = 0;
     pivots.kind[k] = PivotKind::kOne;
-    const double inverse = 1 / pivot;
+    const Real inverse = 1 / pivot;
     for (Index i = k + 1; i < width; ++i) {
-      const double w = column[i];
+      const Real w = column[i];
       tile[k + static_cast<long>(i) * leading] = w;
       column[i] = w * inverse;
     }
     for (Index j = k + 1; j < width; ++j) {
-      double* target = tile + static_cast<long>(j) * leading;
-      const double w = target[k];
+      Real* target = tile + static_cast<long>(j) * leading;
+      const Real w = target[k];
       for (Index i = j; i < width; ++i) target[i] -= column[i] * w;
     }
   }
   return width;
 }
 
-void swap_rows_and_columns(double* full, Index leading, Index width, Index a, Index b, Index* permutation) {
+void swap_rows_and_columns(Real* full, Index leading, Index width, Index a, Index b, Index* permutation) {
   if (a == b) return;
   for (Index i = 0; i < width; ++i) {
-    const double t = full[i + static_cast<long>(a) * leading];
+    const Real t = full[i + static_cast<long>(a) * leading];
     full[i + static_cast<long>(a) * leading] = full[i + static_cast<long>(b) * leading];
     full[i + static_cast<long>(b) * leading] = t;
   }
   for (Index j = 0; j < width; ++j) {
-    const double t = full[a + static_cast<long>(j) * leading];
+    const Real t = full[a + static_cast<long>(j) * leading];
     full[a + static_cast<long>(j) * leading] = full[b + static_cast<long>(j) * leading];
     full[b + static_cast<long>(j) * leading] = t;
   }
@@ -119,20 +130,20 @@ void swap_rows_and_columns(double* full, Index leading, Index width, Index a, In
 
 struct LargestEntries {
   Index diagonal_at, row, column;
-  double diagonal, off_diagonal;
+  Real diagonal, off_diagonal;
   bool all_finite;
 };
 
-LargestEntries search(const double* full, Index leading, Index width, Index from) {
+LargestEntries search(const Real* full, Index leading, Index width, Index from) {
   LargestEntries found{from, from, from, 0, 0, true};
   for (Index j = from; j < width; ++j) {
-    const double* column = full + static_cast<long>(j) * leading;
+    const Real* column = full + static_cast<long>(j) * leading;
     if (!finite(column[j])) found.all_finite = false;
     if (magnitude(column[j]) > found.diagonal) {
       found.diagonal = magnitude(column[j]);
       found.diagonal_at = j;
     }
-    const double largest = abs_max(column + j + 1, width - j - 1);
+    const Real largest = abs_max(column + j + 1, width - j - 1);
     if (!finite(largest)) found.all_finite = false;
     if (largest > found.off_diagonal) {
       found.off_diagonal = largest;
@@ -151,17 +162,17 @@ LargestEntries search(const double* full, Index leading, Index width, Index from
 /// Row of multipliers through a 2x2 pivot [a b; b c]: x = (c/b f - g) / (b t), y = (a/b g - f) / (b t),
 /// t = (a/b)(c/b) - 1. Backward stable since |a|, |c| <= kTwoByTwoShare |b|.
 struct TwoByTwo {
-  double a_over_b, c_over_b, inverse;
-  TwoByTwo(double a, double b, double c) : a_over_b(a / b), c_over_b(c / b) {
+  Real a_over_b, c_over_b, inverse;
+  TwoByTwo(Real a, Real b, Real c) : a_over_b(a / b), c_over_b(c / b) {
     inverse = 1 / (b * (a_over_b * c_over_b - 1));
   }
-  double first(double f, double g) const { return (c_over_b * f - g) * inverse; }
-  double second(double f, double g) const { return (a_over_b * g - f) * inverse; }
+  Real first(Real f, Real g) const { return (c_over_b * f - g) * inverse; }
+  Real second(Real f, Real g) const { return (a_over_b * g - f) * inverse; }
 };
 
-void eliminate_one(double* full, Index leading, Index width, Index k, PivotArrays pivots) {
-  double* column = full + static_cast<long>(k) * leading;
-  const double pivot = column[k], inverse = 1 / pivot;
+void eliminate_one(Real* full, Index leading, Index width, Index k, PivotArrays pivots) {
+  Real* column = full + static_cast<long>(k) * leading;
+  const Real pivot = column[k], inverse = 1 / pivot;
   pivots.diagonal[k] = pivot;
   pivots.off_diagonal[k] = 0;
   pivots.kind[k] = PivotKind::kOne;
@@ -170,16 +181,16 @@ void eliminate_one(double* full, Index leading, Index width, Index k, PivotArray
     column[i] *= inverse;
   }
   for (Index j = k + 1; j < width; ++j) {
-    double* target = full + static_cast<long>(j) * leading;
-    const double w = target[k];
+    Real* target = full + static_cast<long>(j) * leading;
+    const Real w = target[k];
     for (Index i = k + 1; i < width; ++i) target[i] -= column[i] * w;
   }
 }
 
-void eliminate_two(double* full, Index leading, Index width, Index k, PivotArrays pivots) {
-  double* first = full + static_cast<long>(k) * leading;
-  double* second = first + leading;
-  const double b = first[k + 1];
+void eliminate_two(Real* full, Index leading, Index width, Index k, PivotArrays pivots) {
+  Real* first = full + static_cast<long>(k) * leading;
+  Real* second = first + leading;
+  const Real b = first[k + 1];
   const TwoByTwo solve(first[k], b, second[k + 1]);
   pivots.diagonal[k] = first[k];
   pivots.diagonal[k + 1] = second[k + 1];
@@ -188,7 +199,7 @@ void eliminate_two(double* full, Index leading, Index width, Index k, PivotArray
   pivots.kind[k] = PivotKind::kTwoFirst;
   pivots.kind[k + 1] = PivotKind::kTwoSecond;
   for (Index i = k + 2; i < width; ++i) {
-    const double f = first[i], g = second[i];
+    const Real f = first[i], g = second[i];
     full[k + static_cast<long>(i) * leading] = f;
     full[k + 1 + static_cast<long>(i) * leading] = g;
     first[i] = solve.first(f, g);
@@ -197,13 +208,13 @@ void eliminate_two(double* full, Index leading, Index width, Index k, PivotArray
   first[k + 1] = 0;  // L is the identity inside the pivot
   full[k + static_cast<long>(k + 1) * leading] = b;
   for (Index j = k + 2; j < width; ++j) {
-    double* target = full + static_cast<long>(j) * leading;
-    const double f = target[k], g = target[k + 1];
+    Real* target = full + static_cast<long>(j) * leading;
+    const Real f = target[k], g = target[k + 1];
     for (Index i = k + 2; i < width; ++i) target[i] -= first[i] * f + second[i] * g;
   }
 }
 
-Index factor_tile_pivoted(double* tile, Index leading, Index width, PivotArrays pivots, Index* permutation) {
+Index factor_tile_pivoted(Real* tile, Index leading, Index width, PivotArrays pivots, Index* permutation) {
   for (Index j = 0; j < width; ++j) {
     permutation[j] = j;
     for (Index i = j + 1; i < width; ++i)
@@ -212,7 +223,8 @@ Index factor_tile_pivoted(double* tile, Index leading, Index width, PivotArrays 
   Index k = 0;
   while (k < width) {
     const LargestEntries found = search(tile, leading, width, k);
-    if (!found.all_finite || (found.diagonal < kLeastPivot && found.off_diagonal < kLeastPivot)) break;
+    if (!found.all_finite || (found.diagonal < kLeastRealPivot && found.off_diagonal < kLeastRealPivot))
+      break;
     if (found.diagonal >= kTwoByTwoShare * found.off_diagonal) {
       swap_rows_and_columns(tile, leading, width, k, found.diagonal_at, permutation);
       eliminate_one(tile, leading, width, k, pivots);
@@ -228,21 +240,20 @@ Index factor_tile_pivoted(double* tile, Index leading, Index width, PivotArrays 
   return k;
 }
 
-void invert_unit_lower(const double* lower, Index leading, Index width, double* inverse,
-                       Index leading_inverse) {
+void invert_unit_lower(const Real* lower, Index leading, Index width, Real* inverse, Index leading_inverse) {
   // Columns of the inverse in groups of eight, so that L is read an eighth as often.
   constexpr Index kGroup = 8;
   for (Index begin = 0; begin < width; begin += kGroup) {
     const Index columns = width - begin < kGroup ? width - begin : kGroup;
-    double* x = inverse + static_cast<long>(begin) * leading_inverse;
+    Real* x = inverse + static_cast<long>(begin) * leading_inverse;
     for (Index c = 0; c < columns; ++c) {
       for (Index i = 0; i < width; ++i) x[i + c * leading_inverse] = i == begin + c ? 1 : 0;
     }
     for (Index j = begin; j < width; ++j) {
-      const double* column = lower + static_cast<long>(j) * leading;
+      const Real* column = lower + static_cast<long>(j) * leading;
       for (Index c = 0; c < columns; ++c) {
-        double* target = x + c * leading_inverse;
-        const double factor = target[j];
+        Real* target = x + c * leading_inverse;
+        const Real factor = target[j];
         for (Index i = j + 1; i < width; ++i) target[i] -= column[i] * factor;
       }
     }
@@ -250,13 +261,13 @@ void invert_unit_lower(const double* lower, Index leading, Index width, double* 
 }
 
 /// Four columns at a time, so that the row sums are loaded and stored a quarter as often.
-void weighted_abs_sums(const double* a, Index leading, Index rows, Index columns, const double* weight,
-                       double* row_sum, double* column_sum) {
+void weighted_abs_sums(const Real* a, Index leading, Index rows, Index columns, const Real* weight,
+                       Real* row_sum, Real* column_sum) {
   Index k = 0;
   for (; k + 4 <= columns; k += 4) {
-    const double* column[4];
+    const Real* column[4];
     Lanes sum[4]{};
-    double w[4], tail[4]{};
+    Real w[4], tail[4]{};
     for (int c = 0; c < 4; ++c) {
       column[c] = a + static_cast<long>(k + c) * leading;
       w[c] = weight[k + c];
@@ -280,13 +291,13 @@ void weighted_abs_sums(const double* a, Index leading, Index rows, Index columns
     for (int c = 0; column_sum && c < 4; ++c) column_sum[k + c] += sum_of(sum[c]) + tail[c];
   }
   for (; k < columns; ++k) {
-    const double* column = a + static_cast<long>(k) * leading;
+    const Real* column = a + static_cast<long>(k) * leading;
     for (Index i = 0; i < rows; ++i) row_sum[i] += magnitude(column[i]) * weight[k];
     if (column_sum) column_sum[k] += abs_sum_of(column, rows);
   }
 }
 
-double copy_with_abs_sums(const double* source, Index count, double* destination, double* row_sum) {
+Real copy_with_abs_sums(const Real* source, Index count, Real* destination, Real* row_sum) {
   Lanes sum{};
   Index i = 0;
   for (; i + kLanes <= count; i += kLanes) {
@@ -295,9 +306,9 @@ double copy_with_abs_sums(const double* source, Index count, double* destination
     store(row_sum + i, load(row_sum + i) + m);
     sum += m;
   }
-  double total = sum_of(sum);
+  Real total = sum_of(sum);
   for (; i < count; ++i) {
-    const double value = source[i];
+    const Real value = source[i];
     destination[i] = value;
     row_sum[i] += magnitude(value);
     total += magnitude(value);
@@ -312,10 +323,16 @@ double copy_with_abs_sums(const double* source, Index count, double* destination
 
 namespace stanchion {
 namespace STANCHION_KERNEL_ISA {
-extern const Kernels table;
-const Kernels table{
-    STANCHION_KERNEL_NAME, kRowStrip,         kColumnStrip,       factor_tile,   factor_tile_pivoted,
-    invert_unit_lower,     weighted_abs_sums, copy_with_abs_sums, pack_left,     pack_right,
-    multiply_by_upper,     subtract_product,  strips_abs_max,     divide_strips, strips_growth_and_image};
+#ifdef STANCHION_KERNEL_SINGLE
+#define STANCHION_KERNEL_TABLE single_table
+#else
+#define STANCHION_KERNEL_TABLE table
+#endif
+extern const KernelSet<Real> STANCHION_KERNEL_TABLE;
+const KernelSet<Real> STANCHION_KERNEL_TABLE{
+    STANCHION_KERNEL_NAME, kRowStrip,           kColumnStrip,      kLanes,
+    factor_tile,           factor_tile_pivoted, invert_unit_lower, weighted_abs_sums,
+    copy_with_abs_sums,    pack_left,           pack_right,        multiply_by_upper,
+    subtract_product,      strips_abs_max,      divide_strips,     strips_growth_and_image};
 }  // namespace STANCHION_KERNEL_ISA
 }  // namespace stanchion

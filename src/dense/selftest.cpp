@@ -32,6 +32,20 @@ class Tester {
   std::vector<SelftestLine> lines_;
 };
 
+template <class Scalar>
+void try_kernels(Tester& tester, SelftestLevel level, const std::string& precision) {
+  const KernelSet<Scalar>* sets[3];
+  const int count = kernel_sets(sets);
+  for (int s = 0; s < count; ++s) {
+    const KernelSet<Scalar>& set = *sets[s];
+    if (level == SelftestLevel::kQuick && &set != &kernels_of<Scalar>()) continue;
+    tester.run("own loops for " + std::string(set.isa) + precision + ", exact", kKernelRemedy,
+               [&] { return selftests::exact_kernels(set); });
+    tester.run("own tile factors for " + std::string(set.isa) + precision + ", within the bound",
+               kKernelRemedy, [&] { return selftests::factored_tiles(set); });
+  }
+}
+
 }  // namespace
 
 std::vector<SelftestLine> selftest(SelftestLevel level) {
@@ -46,16 +60,8 @@ std::vector<SelftestLine> selftest(SelftestLevel level) {
              [&] { return selftests::exact_products(level); });
   tester.run("dense products of random numbers, within the bound, by " + blas, kBlasRemedy,
              [&] { return selftests::rounded_products(level); });
-  const Kernels* sets[3];
-  const int count = kernel_sets(sets);
-  for (int s = 0; s < count; ++s) {
-    const Kernels& set = *sets[s];
-    if (level == SelftestLevel::kQuick && &set != &kernels()) continue;
-    tester.run(std::string("own loops for ") + set.isa + ", exact", kKernelRemedy,
-               [&] { return selftests::exact_kernels(set); });
-    tester.run(std::string("own tile factors for ") + set.isa + ", within the bound", kKernelRemedy,
-               [&] { return selftests::factored_tiles(set); });
-  }
+  try_kernels<double>(tester, level, "");
+  try_kernels<float>(tester, level, " in single precision");
   return tester.take();
 }
 

@@ -20,9 +20,10 @@ class Numbers {
     return static_cast<double>(static_cast<int>(random_.bits(next_++) % choices) - size);
   }
   double uniform() { return 2 * random_.uniform(next_++) - 1; }
-  std::vector<double> wholes(Offset count, int size) {
-    std::vector<double> values(static_cast<std::size_t>(count));
-    for (double& v : values) v = whole(size);
+  template <class Scalar = double>
+  std::vector<Scalar> wholes(Offset count, int size) {
+    std::vector<Scalar> values(static_cast<std::size_t>(count));
+    for (Scalar& v : values) v = static_cast<Scalar>(whole(size));
     return values;
   }
 
@@ -37,7 +38,9 @@ std::string fused_operations();
 std::string division_and_roots();
 std::string exact_products(SelftestLevel level);
 std::string rounded_products(SelftestLevel level);
-std::string exact_kernels(const Kernels& set);
-std::string factored_tiles(const Kernels& set);
+template <class Scalar>
+std::string exact_kernels(const KernelSet<Scalar>& set);
+template <class Scalar>
+std::string factored_tiles(const KernelSet<Scalar>& set);
 
 }  // namespace stanchion::selftests

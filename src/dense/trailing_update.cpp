@@ -5,7 +5,8 @@
 namespace stanchion {
 namespace {
 
-static_assert(kFrontBlock % kMostRowStrip == 0, "column blocks must end where strips do");
+static_assert(kFrontBlock % most_row_strip<double>() == 0 && kFrontBlock % most_row_strip<float>() == 0,
+              "column blocks must end where strips do");
 
 constexpr Index kPieceRows = 2 * kFrontBlock;
 
@@ -15,35 +16,41 @@ struct Piece {
 
 }  // namespace
 
-void EliminatedColumns::reset(Index first_row, Index order, Index capacity) {
+template <class Scalar>
+void EliminatedColumnsOf<Scalar>::reset(Index first_row, Index order, Index capacity) {
   first_row_ = first_row;
-  capacity_ = capacity + kernels().column_strip;
-  const auto needed = [&](Index strip) {
-    return Offset{(order - first_row + strip - 1) / strip} * strip * capacity_;
+  const KernelSet<Scalar>& set = kernels_of<Scalar>();
+  capacity_ = capacity + set.column_strip;
+  // A right operand holds whole registers of rows, which are whole strips.
+  const auto needed = [&](Index whole) {
+    return Offset{(order - first_row + whole - 1) / whole} * whole * capacity_;
   };
-  if (left_.size() < needed(kernels().row_strip)) left_ = Buffer<double>(needed(kernels().row_strip));
-  if (right_.size() < needed(kernels().column_strip)) right_ = Buffer<double>(needed(kernels().column_strip));
+  if (left_.size() < needed(set.row_strip)) left_ = Buffer<Scalar>(needed(set.row_strip));
+  if (right_.size() < needed(set.lanes)) right_ = Buffer<Scalar>(needed(set.lanes));
 }
 
-void pack_columns(const double* lower, Index leading_lower, const double* scaled, Index leading_scaled,
-                  Index row, Index order, Index count, EliminatedColumns& columns) {
-  const Index first = strip_begin(row), skipped = row - first;
+template <class Scalar>
+void pack_columns(const Scalar* lower, Index leading_lower, const Scalar* scaled, Index leading_scaled,
+                  Index row, Index order, Index count, EliminatedColumnsOf<Scalar>& columns) {
+  const Index first = strip_begin<Scalar>(row), skipped = row - first;
   columns.reset(first, order, count);
-  std::vector<double> shifted(static_cast<std::size_t>(order - first) * static_cast<std::size_t>(count));
-  const auto pack = [&](const double* source, Index leading, auto kernel, double* packed, Index stride) {
+  std::vector<Scalar> shifted(static_cast<std::size_t>(order - first) * static_cast<std::size_t>(count));
+  const auto pack = [&](const Scalar* source, Index leading, auto kernel, Scalar* packed, Index stride) {
     for (Index k = 0; k < count; ++k) {
-      double* target = shifted.data() + Offset{k} * (order - first);
-      std::fill_n(target, skipped, 0.0);
+      Scalar* target = shifted.data() + Offset{k} * (order - first);
+      std::fill_n(target, skipped, Scalar{0});
       std::copy_n(source + Offset{k} * leading, order - row, target + skipped);
     }
     kernel(shifted.data(), order - first, order - first, count, packed, stride);
   };
-  pack(lower, leading_lower, kernels().pack_left, columns.left(first, 0), columns.left_stride());
-  pack(scaled, leading_scaled, kernels().pack_right, columns.right(first, 0), columns.right_stride());
+  pack(lower, leading_lower, kernels_of<Scalar>().pack_left, columns.left(first, 0), columns.left_stride());
+  pack(scaled, leading_scaled, kernels_of<Scalar>().pack_right, columns.right(first, 0),
+       columns.right_stride());
 }
 
-void update_trailing(const BlockLower& front, EliminatedColumns& columns, Index count, Index column_begin,
-                     ThreadPool* team) {
+template <class Scalar>
+void update_trailing(const BlockLowerOf<Scalar>& front, EliminatedColumnsOf<Scalar>& columns, Index count,
+                     Index column_begin, ThreadPool* team) {
   const BlockLayout& layout = front.layout;
   if (count == 0 || column_begin >= layout.order) return;
   std::vector<Piece> pieces;
@@ -61,7 +68,7 @@ void update_trailing(const BlockLower& front, EliminatedColumns& columns, Index 
     const Index leading = layout.leading_dimension(layout.block_of(piece.column_begin));
     // Rows in runs whose strips stay in the second-level cache while the columns pass.
     for (Index row = piece.row_begin; row < piece.row_end; row += kFrontBlock) {
-      kernels().subtract_product(
+      kernels_of<Scalar>().subtract_product(
           columns.left(row, 0), columns.left_stride(), columns.right(piece.column_begin, 0),
           columns.right_stride(), count, std::min(kFrontBlock, piece.row_end - row),
           piece.column_end - piece.column_begin, row - piece.column_begin,
@@ -69,5 +76,16 @@ void update_trailing(const BlockLower& front, EliminatedColumns& columns, Index 
     }
   });
 }
+
+template class EliminatedColumnsOf<double>;
+template class EliminatedColumnsOf<float>;
+template void pack_columns(const double*, Index, const double*, Index, Index, Index, Index,
+                           EliminatedColumnsOf<double>&);
+template void pack_columns(const float*, Index, const float*, Index, Index, Index, Index,
+                           EliminatedColumnsOf<float>&);
+template void update_trailing(const BlockLowerOf<double>&, EliminatedColumnsOf<double>&, Index, Index,
+                              ThreadPool*);
+template void update_trailing(const BlockLowerOf<float>&, EliminatedColumnsOf<float>&, Index, Index,
+                              ThreadPool*);
 
 }  // namespace stanchion

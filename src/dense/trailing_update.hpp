@@ -22,54 +22,59 @@ void for_each_piece(ThreadPool* team, Offset pieces, const Work& work) {
 }
 
 /// Eliminated columns as operands of products: rows [first_row, order) of L as left and of W = L D as right
-/// operand, up to `capacity` columns. first_row is a multiple of kMostRowStrip, so that strips and column
+/// operand, up to `capacity` columns. first_row is a multiple of most_row_strip(), so that strips and column
 /// blocks of the front end together; rows before the first that matters are zero.
-class EliminatedColumns {
+template <class Scalar>
+class EliminatedColumnsOf {
  public:
   /// Room for rows [first_row, order); what was there is lost. Products write whole strips of columns, so up
   /// to column_strip - 1 columns after the last one asked for are overwritten.
   void reset(Index first_row, Index order, Index capacity);
 
   Index first_row() const { return first_row_; }
-  Index left_stride() const { return capacity_ * kernels().row_strip; }
-  Index right_stride() const { return capacity_ * kernels().column_strip; }
+  Index left_stride() const { return capacity_ * kernels_of<Scalar>().row_strip; }
+  Index right_stride() const { return capacity_ * kernels_of<Scalar>().column_strip; }
   /// Entry of `row`, which must start a strip, in `column`.
-  double* left(Index row, Index column) {
-    const Index strip = kernels().row_strip;
+  Scalar* left(Index row, Index column) {
+    const Index strip = kernels_of<Scalar>().row_strip;
     return left_.data() + Offset{(row - first_row_) / strip} * left_stride() + Offset{column} * strip;
   }
-  double* right(Index row, Index column) {
-    const Index strip = kernels().column_strip;
+  Scalar* right(Index row, Index column) {
+    const Index strip = kernels_of<Scalar>().column_strip;
     return right_.data() + Offset{(row - first_row_) / strip} * right_stride() + Offset{column} * strip;
   }
-  /// Doubles held, grown to the largest use so far.
-  Offset doubles() const { return left_.size() + right_.size(); }
+  /// Numbers held, grown to the largest use so far.
+  Offset numbers() const { return left_.size() + right_.size(); }
 
  private:
   Index first_row_ = 0, capacity_ = 0;
-  Buffer<double> left_, right_;
+  Buffer<Scalar> left_, right_;
 };
+using EliminatedColumns = EliminatedColumnsOf<double>;
 
 /// Doubles that EliminatedColumns needs for a front of `order` rows and `candidates` columns, with any
 /// kernels.
 constexpr Offset eliminated_doubles(Index order, Index candidates) {
   const Index columns = candidates < kFrontBlock ? candidates : kFrontBlock;
-  return Offset{2} * (order + 2 * kMostRowStrip) * (columns + 8);
+  return Offset{2} * (order + 2 * most_row_strip<double>()) * (columns + 8);
 }
 
 /// First row of the strips for rows from `row` on.
+template <class Scalar>
 constexpr Index strip_begin(Index row) {
-  return row / kMostRowStrip * kMostRowStrip;
+  return row / most_row_strip<Scalar>() * most_row_strip<Scalar>();
 }
 
 /// Packs rows [row, order) of `count` columns of L and of W, both column-major from `row` on.
-void pack_columns(const double* lower, Index leading_lower, const double* scaled, Index leading_scaled,
-                  Index row, Index order, Index count, EliminatedColumns& columns);
+template <class Scalar>
+void pack_columns(const Scalar* lower, Index leading_lower, const Scalar* scaled, Index leading_scaled,
+                  Index row, Index order, Index count, EliminatedColumnsOf<Scalar>& columns);
 
 /// For every column j in [column_begin, order) and row i >= j: C_ij -= sum_k L_ik W_jk, k < count.
 /// column_begin must not be before columns.first_row(). Entries of the upper triangle inside a column block
 /// may be overwritten. Cost: count multiply-adds an entry.
-void update_trailing(const BlockLower& front, EliminatedColumns& columns, Index count, Index column_begin,
-                     ThreadPool* team);
+template <class Scalar>
+void update_trailing(const BlockLowerOf<Scalar>& front, EliminatedColumnsOf<Scalar>& columns, Index count,
+                     Index column_begin, ThreadPool* team);
 
 }  // namespace stanchion

@@ -12,6 +12,7 @@ Request by_second_path(Request request) {
 
 void use_plain_kernels() {
   use_kernels(reference_kernels());
+  use_kernels(reference_kernels_of<float>());
 }
 
 }  // namespace stanchion

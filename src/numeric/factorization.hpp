@@ -21,6 +21,7 @@ struct FactorOptions {
   bool definite = false;      ///< no pivoting, stop at the first pivot that is not positive
   bool keep_factor = false;   ///< keep L and D for solves; otherwise panels are dropped once used
   bool store_single = false;  ///< with keep_factor: L is rounded to float where it is stored, half the memory
+  bool single = false;  ///< everything is computed and stored in float: a coarser bound, half the memory
   double pivot_threshold = 0.01;
   std::optional<Offset> memory_cap_bytes;  ///< of the numeric phase
   ProgressCallback progress;
@@ -76,6 +77,7 @@ struct Factorization {
   PivotSigns signs;
   std::vector<PivotSigns> component_signs;  ///< per connected part
   double error_bound = 0;                   ///< proved: ||E||_2, forming of the matrix included
+  double unit_roundoff = 0x1p-53;           ///< of the arithmetic
   Offset delayed_pivots = 0, two_by_two_pivots = 0;
   Offset peak_bytes = 0;  ///< of the numeric phase, as allocated
   double seconds = 0;
@@ -100,9 +102,13 @@ struct Factorization {
   }
 };
 
+/// Most rows that may be factored in single precision: sums of so many bounds still say something.
+constexpr Index kMostSingleRows = 1'000'000;
+
 /// Factors `matrix` (in the elimination order of `analysis`). All threads of `pool` are used; the bits of the
 /// result do not depend on their number. Errors: interrupted; resource limit "memory-cap" with the figure
-/// reached, or "out-of-memory". Cost and memory: see Analysis::forecast. `pool` must not be in use.
+/// reached, or "out-of-memory"; internal when `single` is asked for more than kMostSingleRows rows. Cost and
+/// memory: see Analysis::forecast. `pool` must not be in use.
 Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix,
                                 const FactorOptions& options, ThreadPool& pool);
 

@@ -13,6 +13,7 @@ namespace stanchion {
 namespace {
 
 /// Runs subtrees on single workers, then the shared fronts with everyone, and adds up what was counted.
+template <class Scalar>
 class Factorizer {
  public:
   Factorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
@@ -44,8 +45,8 @@ class Factorizer {
     for (auto& worker : workers_) collect(result, worker);
     collect(result, shared_worker_);
     if (!status_.ok()) return status_;
-    // Sums of non-negative terms of any practical length are covered by one part in a thousand.
-    result.error_bound *= 1.001;
+    result.error_bound *= run_.slack();
+    result.unit_roundoff = Rounding<Scalar>::kUnit;
     result.peak_bytes = run_.memory.peak();
     result.seconds = watch.seconds();
     return result;
@@ -59,7 +60,7 @@ class Factorizer {
   }
 
   /// Processes one front and reports progress; false when the run is to end.
-  bool step(FrontWorker& worker, Index front, ThreadPool* team) {
+  bool step(FrontWorker<Scalar>& worker, Index front, ThreadPool* team) {
     if (run_.abandon) return false;
     if (run_.options.cancel != nullptr && run_.options.cancel->cancelled()) {
       fail(Status::interrupted());
@@ -136,9 +137,9 @@ class Factorizer {
     });
   }
 
-  bool start(std::unique_ptr<FrontWorker>& worker, Offset arena_doubles) {
+  bool start(std::unique_ptr<FrontWorker<Scalar>>& worker, Offset arena_doubles) {
     try {
-      worker = std::make_unique<FrontWorker>(run_, arena_doubles);
+      worker = std::make_unique<FrontWorker<Scalar>>(run_, arena_doubles);
       return true;
     } catch (const std::bad_alloc&) {
       fail(Status::resource_limit("out-of-memory", "no address space for the stack of fronts", "",
@@ -148,17 +149,17 @@ class Factorizer {
   }
 
   /// Adds a worker's counts to the result, takes over what it kept, and lets it go.
-  static void collect(Factorization& result, std::unique_ptr<FrontWorker>& worker) {
+  static void collect(Factorization& result, std::unique_ptr<FrontWorker<Scalar>>& worker) {
     if (!worker) return;
     result.collect(*worker);
     if (result.factor) result.factor->memory.push_back(std::move(worker->kept_memory));
     worker.reset();
   }
 
-  FactorRun run_;
+  FactorRun<Scalar> run_;
   ThreadPool& pool_;
-  std::vector<std::unique_ptr<FrontWorker>> workers_;
-  std::unique_ptr<FrontWorker> shared_worker_;
+  std::vector<std::unique_ptr<FrontWorker<Scalar>>> workers_;
+  std::unique_ptr<FrontWorker<Scalar>> shared_worker_;
   std::mutex mutex_, progress_mutex_;
   Status status_;
 };
@@ -179,7 +180,9 @@ Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& m
                                 const FactorOptions& options, ThreadPool& pool) {
   use_single_threaded_blas();
   try {
-    return Factorizer(analysis, matrix, options, pool).run();
+    if (!options.single) return Factorizer<double>(analysis, matrix, options, pool).run();
+    if (analysis.tree.rows > kMostSingleRows) return Status::internal("too many rows for single precision");
+    return Factorizer<float>(analysis, matrix, options, pool).run();
   } catch (const std::bad_alloc&) {
     return Status::resource_limit("out-of-memory", "the system has no more memory for the numeric phase", "",
                                   "free memory or use a machine with more memory");

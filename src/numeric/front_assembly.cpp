@@ -8,23 +8,24 @@
 namespace stanchion {
 namespace {
 
-constexpr double kUnit = 0x1p-53;
-constexpr Index kScatterColumns = 64;  ///< columns of a contribution block added as one piece
+constexpr double kUnit = Rounding<double>::kUnit;  // entries are formed in double
+constexpr Index kScatterColumns = 64;              ///< columns of a contribution block added as one piece
 
 /// Adds columns [begin, end) of the child to the front through `map` (child row -> front row). `run_end[i]`:
 /// end of the rows from i on that stay next to each other.
-void scatter_columns(const Contribution& child, const Index* map, const Index* run_end,
-                     const BlockLower& front, Index begin, Index end) {
-  const BlockLower from{contribution_layout(child.order), child.values};
+template <class Scalar>
+void scatter_columns(const Contribution<Scalar>& child, const Index* map, const Index* run_end,
+                     const BlockLowerOf<Scalar>& front, Index begin, Index end) {
+  const BlockLowerOf<Scalar> from{contribution_layout(child.order), child.values};
   const bool ascending = child.delayed.empty();
   for (Index j = begin; j < end; ++j) {
-    const double* source = from.column(j, j) - j;
+    const Scalar* source = from.column(j, j) - j;
     const Index to = map[j];
     if (ascending) {
-      double* column = front.column(to, to) - to;
+      Scalar* column = front.column(to, to) - to;
       for (Index i = j; i < child.order;) {
         const Index stop = run_end[i];
-        double* target = column + (map[i] - i);
+        Scalar* target = column + (map[i] - i);
         for (; i < stop; ++i) target[i] += source[i];
       }
     } else {
@@ -36,7 +37,8 @@ void scatter_columns(const Contribution& child, const Index* map, const Index* r
 
 }  // namespace
 
-void FrontWorker::add_matrix_entries(const FrontRows& rows, const BlockLower& matrix) {
+template <class Scalar>
+void FrontWorker<Scalar>::add_matrix_entries(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix) {
   const MatrixFamily& family = *run_.matrix.family;
   const Index first = run_.analysis.tree.first_column[rows.front];
   const double offset = run_.matrix.offset;
@@ -50,19 +52,24 @@ void FrontWorker::add_matrix_entries(const FrontRows& rows, const BlockLower& ma
         value -= offset;
         error += kUnit * std::fabs(value);
       }
+      if constexpr (!std::is_same_v<Scalar, double>) {
+        error += Rounding<Scalar>::kUnit * std::fabs(value) + Rounding<Scalar>::kLeast;
+      }
       // The pivots of a front and its rows below ascend, so this entry lies in the lower triangle.
-      matrix.at(i, j) = value;
-      const double size = std::fabs(value);
+      matrix.at(i, j) = static_cast<Scalar>(value);
+      const auto size = static_cast<Scalar>(std::fabs(value)), off = static_cast<Scalar>(error);
       addend_sums_[static_cast<std::size_t>(i)] += size;
-      row_error_[static_cast<std::size_t>(i)] += error;
+      row_error_[static_cast<std::size_t>(i)] += off;
       if (i == j) continue;
       addend_sums_[static_cast<std::size_t>(j)] += size;
-      row_error_[static_cast<std::size_t>(j)] += error;
+      row_error_[static_cast<std::size_t>(j)] += off;
     }
   }
 }
 
-void FrontWorker::add_contribution(const Contribution& child, const BlockLower& matrix, ThreadPool* team) {
+template <class Scalar>
+void FrontWorker<Scalar>::add_contribution(const Contribution<Scalar>& child,
+                                           const BlockLowerOf<Scalar>& matrix, ThreadPool* team) {
   map_child_rows(run_.analysis.tree, static_cast<Index>(&child - run_.waiting.data()), child.delayed,
                  local_of_, map_);
   for (Index i = 0; i < child.order; ++i) {
@@ -71,7 +78,8 @@ void FrontWorker::add_contribution(const Contribution& child, const BlockLower& 
     addend_sums_[to] += child.row_sums[i];
     ++addends_[to];
     image_[to] += child.image[i];
-    image_error_[to] += child.image_error[i] + kUnit * std::fabs(image_[to]);
+    image_error_[to] +=
+        child.image_error[i] + static_cast<Scalar>(Rounding<Scalar>::kUnit) * std::fabs(image_[to]);
   }
   run_end_.resize(map_.size());
   for (Index i = child.order; i-- > 0;) {
@@ -87,7 +95,9 @@ void FrontWorker::add_contribution(const Contribution& child, const BlockLower& 
   });
 }
 
-Status FrontWorker::assemble(const FrontRows& rows, const BlockLower& matrix, ThreadPool* team) {
+template <class Scalar>
+Status FrontWorker<Scalar>::assemble(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix,
+                                     ThreadPool* team) {
   const auto order = static_cast<std::size_t>(rows.order);
   row_error_.assign(order, 0);
   growth_.assign(order, 0);
@@ -100,9 +110,9 @@ Status FrontWorker::assemble(const FrontRows& rows, const BlockLower& matrix, Th
   const BlockLayout& layout = matrix.layout;
   for_each_piece(team, layout.blocks(), [&](Offset block) {
     const auto b = static_cast<Index>(block);
-    double* begin = matrix.data + layout.block_offset(b);
+    Scalar* begin = matrix.data + layout.block_offset(b);
     const Offset columns = layout.block_end(b) - layout.block_begin(b);
-    std::fill(begin, begin + columns * layout.leading_dimension(b), 0.0);
+    std::fill(begin, begin + columns * layout.leading_dimension(b), Scalar{0});
   });
   add_matrix_entries(rows, matrix);
   for (const Index child : run_.children[static_cast<std::size_t>(rows.front)]) {
@@ -110,8 +120,12 @@ Status FrontWorker::assemble(const FrontRows& rows, const BlockLower& matrix, Th
   }
   // Every addition to a row rounds a partial sum that is at most the sum of the addends' sizes.
   for (std::size_t i = 0; i < order; ++i)
-    row_error_[i] += kUnit * static_cast<double>(addends_[i]) * addend_sums_[i];
+    row_error_[i] +=
+        static_cast<Scalar>(Rounding<Scalar>::kUnit * static_cast<double>(addends_[i])) * addend_sums_[i];
   return {};
 }
+
+template Status FrontWorker<double>::assemble(const FrontRows&, const BlockLowerOf<double>&, ThreadPool*);
+template Status FrontWorker<float>::assemble(const FrontRows&, const BlockLowerOf<float>&, ThreadPool*);
 
 }  // namespace stanchion

@@ -2,6 +2,7 @@
 #pragma once
 
 #include <atomic>
+#include <type_traits>
 #include <vector>
 
 #include "base/arena.hpp"
@@ -15,37 +16,46 @@ namespace stanchion {
 
 /// What a front leaves for its parent: the Schur complement of the rows not eliminated, delayed columns
 /// first.
+template <class Scalar>
 struct Contribution {
-  double* values = nullptr;       ///< contribution_layout(order)
-  double* row_error = nullptr;    ///< bound on the row sums of the error so far
-  double* row_sums = nullptr;     ///< row sums of |values|
-  double* image = nullptr;        ///< shares of L D L^T x from the pivots so far
-  double* image_error = nullptr;  ///< bound on the rounding of `image`
+  Scalar* values = nullptr;       ///< contribution_layout(order)
+  Scalar* row_error = nullptr;    ///< bound on the row sums of the error so far
+  Scalar* row_sums = nullptr;     ///< row sums of |values|
+  Scalar* image = nullptr;        ///< shares of L D L^T x from the pivots so far
+  Scalar* image_error = nullptr;  ///< bound on the rounding of `image`
   Index order = 0;
   std::vector<Index> delayed;  ///< positions of the delayed columns
-  Buffer<double> own;          ///< set when the block left its worker's stack
+  Buffer<Scalar> own;          ///< set when the block left its worker's stack
 
-  /// Points into `doubles`, contribution_doubles(order) of them.
-  void place(double* doubles);
+  /// Points into `numbers`, contribution_numbers(order) of them.
+  void place(Scalar* numbers);
 };
 
 /// State shared by the workers of one factorization.
+template <class Scalar>
 struct FactorRun {
   const Analysis& analysis;
   const ShiftedMatrix& matrix;
   const FactorOptions& options;
-  std::vector<std::vector<Index>> children;  ///< of every front, in processing order
-  std::vector<Contribution> waiting;         ///< per front, until its parent is assembled
-  Factor* factor = nullptr;                  ///< null: discard
+  std::vector<std::vector<Index>> children;   ///< of every front, in processing order
+  std::vector<Contribution<Scalar>> waiting;  ///< per front, until its parent is assembled
+  Factor* factor = nullptr;                   ///< null: discard
   MemoryLedger memory;
   std::atomic<double> flops_done{0};
   std::atomic<bool> abandon{false};  ///< a worker stopped, broke down, failed or was cancelled
   FaultProbe probe{};
+
+  /// What makes a bound of a sum of bounds, each summed in Scalar: see src/inertia/error_bound.md, section 6.
+  double slack() const {
+    if constexpr (std::is_same_v<Scalar, double>) return 1.001;
+    return 1.1 / (1 - 8 * Rounding<Scalar>::kUnit * (analysis.tree.rows + 1000.0));
+  }
 };
 
+template <class Scalar>
 class FrontWorker {
  public:
-  FrontWorker(FactorRun& run, Offset arena_doubles);
+  FrontWorker(FactorRun<Scalar>& run, Offset arena_doubles);
   ~FrontWorker();
   FrontWorker(FrontWorker&&) = delete;
 
@@ -67,26 +77,35 @@ class FrontWorker {
   PageStore kept_memory;  ///< of the panels that are kept
 
  private:
-  Status assemble(const FrontRows& rows, const BlockLower& matrix, ThreadPool* team);
-  void add_matrix_entries(const FrontRows& rows, const BlockLower& matrix);
-  void add_contribution(const Contribution& child, const BlockLower& matrix, ThreadPool* team);
+  Status assemble(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix, ThreadPool* team);
+  void add_matrix_entries(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix);
+  void add_contribution(const Contribution<Scalar>& child, const BlockLowerOf<Scalar>& matrix,
+                        ThreadPool* team);
   void count_pivots(const FrontRows& rows, const EliminationResult& result, double gamma);
   void bound_images(const FrontRows& rows, const EliminationResult& result);
   void check_image(Index row, double bound);
-  Status keep_panel(const FrontRows& rows, const BlockLower& matrix, Index eliminated);
-  void pack(const FrontRows& rows, const BlockLower& matrix, const EliminationResult& result, double gamma,
-            double* destination);
+  Status keep_panel(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix, Index eliminated);
+  void pack(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix, const EliminationResult& result,
+            double gamma, Scalar* destination);
   Status book_arena();
 
-  FactorRun& run_;
+  /// The stack holds doubles; numbers of any scalar lie in it.
+  Scalar* push(Offset numbers) {
+    return reinterpret_cast<Scalar*>(arena_.push(
+        (numbers * Offset{sizeof(Scalar)} + Offset{sizeof(double)} - 1) / Offset{sizeof(double)}));
+  }
+  void pop_to(const Scalar* mark) { arena_.pop_to(reinterpret_cast<const double*>(mark)); }
+
+  FactorRun<Scalar>& run_;
   Arena arena_;
   Offset booked_doubles_ = 0;
-  EliminationScratch scratch_;
-  Offset booked_scratch_ = 0;
-  Buffer<Index> local_of_;    ///< position -> row of the current front
-  std::vector<Index> label_;  ///< row of the current front -> position
-  std::vector<double> row_error_, growth_, addend_sums_, diagonal_, off_diagonal_;
-  std::vector<double> sign_, image_, image_error_;
+  EliminationScratchOf<Scalar> scratch_;
+  Offset booked_scratch_ = 0;  ///< bytes
+  Buffer<Index> local_of_;     ///< position -> row of the current front
+  std::vector<Index> label_;   ///< row of the current front -> position
+  std::vector<double> diagonal_, off_diagonal_;
+  std::vector<Scalar> row_error_, growth_, addend_sums_;
+  std::vector<Scalar> sign_, image_, image_error_;
   std::vector<Index> addends_;  ///< contribution blocks that reach a row
   std::vector<PivotKind> kind_;
   std::vector<Index> map_,

@@ -41,7 +41,7 @@ std::vector<Index> processing_order(const SupernodeTree& tree) {
     const auto order = static_cast<Index>(tree.front_rows[s]);
     const auto below = static_cast<Index>(tree.front_rows[s] - tree.pivots[s]);
     peak[s] = std::max(highest, stacked + static_cast<double>(front_layout(order).size()));
-    left[s] = static_cast<double>(contribution_doubles(below));
+    left[s] = static_cast<double>(contribution_numbers(below));
     if (tree.parent[s] >= 0) {
       children[static_cast<std::size_t>(tree.parent[s])].push_back(static_cast<Index>(s));
     } else {

@@ -47,7 +47,7 @@ Offset front_doubles(const AssemblyTree& tree, Index f) {
   return rounded_up(front_layout(tree.order(f)).size());
 }
 Offset result_doubles(const AssemblyTree& tree, Index f) {
-  return rounded_up(contribution_doubles(tree.below(f)));
+  return rounded_up(contribution_numbers(tree.below(f)));
 }
 
 /// High-water mark of a last-in-first-out stack over the fronts named, in order.

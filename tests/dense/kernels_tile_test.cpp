@@ -13,13 +13,28 @@ namespace {
 
 using test::Random;
 
+using Scalars = ::testing::Types<double, float>;
+template <class Scalar>
+class KernelSets : public ::testing::Test {};
+TYPED_TEST_SUITE(KernelSets, Scalars);
+template <class Scalar>
+class FactorTile : public ::testing::Test {};
+TYPED_TEST_SUITE(FactorTile, Scalars);
+template <class Scalar>
+class FactorTilePivoted : public ::testing::Test {};
+TYPED_TEST_SUITE(FactorTilePivoted, Scalars);
+template <class Scalar>
+class InvertUnitLower : public ::testing::Test {};
+TYPED_TEST_SUITE(InvertUnitLower, Scalars);
+
 constexpr double kGuard = 12345.25;  // fills what a kernel must leave alone
-constexpr double kUnit = 0x1p-53;
 
 /// A tile of `width` columns inside a taller array, with room for its pivots.
+template <class Scalar>
 struct Tile {
+  static constexpr double kUnit = Rounding<Scalar>::kUnit;
   Index width, leading;
-  std::vector<double> value, original;
+  std::vector<Scalar> value, original;
   std::vector<double> diagonal, off_diagonal;
   std::vector<PivotKind> kind;
   std::vector<Index> permutation;
@@ -32,12 +47,12 @@ struct Tile {
     diagonal.resize(w), off_diagonal.resize(w), kind.resize(w), permutation.resize(w);
     for (Index j = 0; j < width; ++j) {
       for (Index i = j; i < width; ++i)
-        at(i, j) = test::uniform(random, -1, 1) + (i == j ? diagonal_shift : 0);
+        at(i, j) = static_cast<Scalar>(test::uniform(random, -1, 1) + (i == j ? diagonal_shift : 0));
     }
     original = value;
   }
-  double& at(Index i, Index j) { return value[static_cast<std::size_t>(j * leading + i)]; }
-  double before(Index i, Index j) const {
+  Scalar& at(Index i, Index j) { return value[static_cast<std::size_t>(j * leading + i)]; }
+  Scalar before(Index i, Index j) const {
     return original[static_cast<std::size_t>(std::min(i, j) * leading + std::max(i, j))];
   }
   PivotArrays pivots() { return {diagonal.data(), off_diagonal.data(), kind.data()}; }
@@ -86,31 +101,33 @@ struct Tile {
   }
 };
 
-template <class Check>
+template <class Scalar, class Check>
 void for_every_set(const Check& check) {
-  const Kernels* sets[3];
+  const KernelSet<Scalar>* sets[3];
   const int count = kernel_sets(sets);
-  EXPECT_EQ(sets[0], &reference_kernels());
+  EXPECT_EQ(sets[0], &reference_kernels_of<Scalar>());
   for (int s = 0; s < count; ++s) {
     SCOPED_TRACE(sets[s]->isa);
     check(*sets[s]);
   }
 }
 
-TEST(KernelSets, TheChosenOneIsAmongThoseThatRun) {
-  const Kernels* sets[3];
+TYPED_TEST(KernelSets, TheChosenOneIsAmongThoseThatRun) {
+  using Scalar = TypeParam;
+  const KernelSet<Scalar>* sets[3];
   const int count = kernel_sets(sets);
   ASSERT_GE(count, 1);
-  EXPECT_EQ(&kernels(), sets[count - 1]) << "the last is the widest";
+  EXPECT_EQ(&kernels_of<Scalar>(), sets[count - 1]) << "the last is the widest";
 }
 
-TEST(FactorTile, EverySizeMultipliesOut) {
-  for_every_set([](const Kernels& set) {
+TYPED_TEST(FactorTile, EverySizeMultipliesOut) {
+  using Scalar = TypeParam;
+  for_every_set<Scalar>([](const KernelSet<Scalar>& set) {
     Random random(111);
     for (Index width = 1; width <= kTileWidth; ++width) {
       for (const Index leading : {width, width + 1, Index{67}}) {
         for (const bool definite : {false, true}) {
-          Tile tile(random, width, std::max(leading, width), 1.0 * width + 1);
+          Tile<Scalar> tile(random, width, std::max(leading, width), 1.0 * width + 1);
           ASSERT_EQ(set.factor_tile(tile.value.data(), tile.leading, width, definite, 100, tile.pivots()),
                     width);
           tile.expect_factored(width, false);
@@ -121,20 +138,24 @@ TEST(FactorTile, EverySizeMultipliesOut) {
   });
 }
 
-TEST(FactorTile, StopsBeforeTheFirstBadPivot) {
-  constexpr double kInfinity = std::numeric_limits<double>::infinity();
-  constexpr double kNan = std::numeric_limits<double>::quiet_NaN();
-  for_every_set([&](const Kernels& set) {
+TYPED_TEST(FactorTile, StopsBeforeTheFirstBadPivot) {
+  using Scalar = TypeParam;
+  constexpr Scalar kInfinity = std::numeric_limits<Scalar>::infinity();
+  constexpr Scalar kNan = std::numeric_limits<Scalar>::quiet_NaN();
+  constexpr double kLeast = Rounding<Scalar>::kLeastPivot;
+  constexpr auto kTooSmall = static_cast<Scalar>(kLeast / 2);
+  for_every_set<Scalar>([&](const KernelSet<Scalar>& set) {
     Random random(112);
     for (const Index bad : {0, 1, 8, 30}) {
-      for (const double pivot : {0.0, 0x1p-901, -0x1p-901, kInfinity, -kInfinity, kNan, -5.0, 1e-6}) {
+      for (const Scalar pivot :
+           {Scalar{0}, kTooSmall, -kTooSmall, kInfinity, -kInfinity, kNan, Scalar{-5}, Scalar{1e-6}}) {
         for (const bool definite : {false, true}) {
-          Tile tile(random, 31, 33, 40);
+          Tile<Scalar> tile(random, 31, 33, 40);
           for (Index j = 0; j < bad; ++j) tile.at(bad, j) = 0;
           tile.at(bad, bad) = pivot;
           tile.original = tile.value;
-          const bool takes = definite ? pivot >= kLeastPivot && pivot < kInfinity
-                                      : pivot == -5.0 || (pivot == 1e-6 && bad == 30);
+          const bool takes = definite ? pivot >= kLeast && pivot < kInfinity
+                                      : pivot == -5.0 || (pivot == Scalar{1e-6} && bad == 30);
           const Index found = set.factor_tile(tile.value.data(), 33, 31, definite, 100, tile.pivots());
           if (takes) {
             EXPECT_GT(found, bad) << "pivot " << pivot << " definite " << definite;
@@ -147,24 +168,26 @@ TEST(FactorTile, StopsBeforeTheFirstBadPivot) {
   });
 }
 
-TEST(FactorTile, ANanBelowAPivotIsNotAcceptedWhenPivoting) {
-  for_every_set([](const Kernels& set) {
+TYPED_TEST(FactorTile, ANanBelowAPivotIsNotAcceptedWhenPivoting) {
+  using Scalar = TypeParam;
+  for_every_set<Scalar>([](const KernelSet<Scalar>& set) {
     Random random(113);
     for (Index row = 1; row < 40; ++row) {
-      Tile tile(random, 40, 40, 50);
-      tile.at(row, 0) = std::numeric_limits<double>::quiet_NaN();
+      Tile<Scalar> tile(random, 40, 40, 50);
+      tile.at(row, 0) = std::numeric_limits<Scalar>::quiet_NaN();
       EXPECT_EQ(set.factor_tile(tile.value.data(), 40, 40, false, 100, tile.pivots()), 0);
     }
   });
 }
 
-TEST(FactorTilePivoted, EverySizeMultipliesOutWithSmallMultipliers) {
-  for_every_set([](const Kernels& set) {
+TYPED_TEST(FactorTilePivoted, EverySizeMultipliesOutWithSmallMultipliers) {
+  using Scalar = TypeParam;
+  for_every_set<Scalar>([](const KernelSet<Scalar>& set) {
     Random random(114);
     for (Index width = 1; width <= kTileWidth; ++width) {
       for (const double shift : {0.0, 1.0}) {
         for (const bool zero_diagonal : {false, true}) {
-          Tile tile(random, width, width + width % 5, shift);
+          Tile<Scalar> tile(random, width, width + width % 5, shift);
           for (Index i = 0; zero_diagonal && i < width; ++i) tile.at(i, i) = 0;
           tile.original = tile.value;
           const Index found = set.factor_tile_pivoted(tile.value.data(), tile.leading, width, tile.pivots(),
@@ -184,21 +207,23 @@ TEST(FactorTilePivoted, EverySizeMultipliesOutWithSmallMultipliers) {
   });
 }
 
-TEST(FactorTilePivoted, StopsWhereOnlyZerosOrPoisonAreLeft) {
-  for_every_set([](const Kernels& set) {
+TYPED_TEST(FactorTilePivoted, StopsWhereOnlyZerosOrPoisonAreLeft) {
+  using Scalar = TypeParam;
+  for_every_set<Scalar>([](const KernelSet<Scalar>& set) {
     Random random(115);
     for (const Index rank : {0, 1, 5, 20}) {
-      Tile tile(random, 24, 25, 0);
+      Tile<Scalar> tile(random, 24, 25, 0);
       for (Index j = 0; j < 24; ++j) {
-        for (Index i = j; i < 24; ++i) tile.at(i, j) = i == j && i % 24 < rank ? 3.0 + i : 0.0;
+        for (Index i = j; i < 24; ++i)
+          tile.at(i, j) = i == j && i % 24 < rank ? Scalar{3} + static_cast<Scalar>(i) : Scalar{0};
       }
       EXPECT_EQ(set.factor_tile_pivoted(tile.value.data(), 25, 24, tile.pivots(), tile.permutation.data()),
                 rank);
     }
-    for (const double bad :
-         {std::numeric_limits<double>::infinity(), std::numeric_limits<double>::quiet_NaN()}) {
+    for (const Scalar bad :
+         {std::numeric_limits<Scalar>::infinity(), std::numeric_limits<Scalar>::quiet_NaN()}) {
       for (const Index row : {0, 7, 23}) {
-        Tile tile(random, 24, 24, 30);
+        Tile<Scalar> tile(random, 24, 24, 30);
         tile.at(row, 0) = bad;
         EXPECT_EQ(set.factor_tile_pivoted(tile.value.data(), 24, 24, tile.pivots(), tile.permutation.data()),
                   0);
@@ -207,14 +232,15 @@ TEST(FactorTilePivoted, StopsWhereOnlyZerosOrPoisonAreLeft) {
   });
 }
 
-TEST(InvertUnitLower, EverySizeIsAnInverse) {
-  for_every_set([](const Kernels& set) {
+TYPED_TEST(InvertUnitLower, EverySizeIsAnInverse) {
+  using Scalar = TypeParam;
+  for_every_set<Scalar>([](const KernelSet<Scalar>& set) {
     Random random(116);
     for (Index width = 1; width <= kTileWidth; ++width) {
       const Index leading = width + 3, leading_inverse = width + 1;
-      std::vector<double> lower(static_cast<std::size_t>(leading * width)),
+      std::vector<Scalar> lower(static_cast<std::size_t>(leading * width)),
           inverse(static_cast<std::size_t>(leading_inverse * width), kGuard);
-      for (double& v : lower) v = test::uniform(random, -1, 1);
+      for (Scalar& v : lower) v = static_cast<Scalar>(test::uniform(random, -1, 1));
       for (Index j = 0; j < width; ++j)
         lower[static_cast<std::size_t>(j * leading + j)] = kGuard;  // not to be read
       set.invert_unit_lower(lower.data(), leading, width, inverse.data(), leading_inverse);
@@ -233,7 +259,7 @@ TEST(InvertUnitLower, EverySizeIsAnInverse) {
             ASSERT_EQ(inverse[static_cast<std::size_t>(c * leading_inverse + i)], 0);
           }
           ASSERT_LE(static_cast<double>(std::fabs(sum - (i == c ? 1 : 0))),
-                    width * kUnit * static_cast<double>(size));
+                    width * Rounding<Scalar>::kUnit * static_cast<double>(size));
         }
       }
     }

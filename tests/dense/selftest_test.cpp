@@ -11,13 +11,13 @@ TEST(Selftest, ASoundMachinePassesEveryLine) {
   const auto lines = selftest(SelftestLevel::kFull);
   for (const SelftestLine& line : lines) EXPECT_TRUE(line.ok()) << line.what << ": " << line.wrong;
   const Kernels* sets[3];
-  EXPECT_EQ(lines.size(), 6U + 2U * static_cast<std::size_t>(kernel_sets(sets)));
+  EXPECT_EQ(lines.size(), 6U + 4U * static_cast<std::size_t>(kernel_sets(sets)));
   EXPECT_TRUE(selftest_status(lines).ok());
 }
 
 TEST(Selftest, TheQuickLevelTriesTheSamePropertiesInLessTime) {
   const auto full = selftest(SelftestLevel::kFull), quick = selftest(SelftestLevel::kQuick);
-  EXPECT_EQ(quick.size(), 8U);
+  EXPECT_EQ(quick.size(), 10U);
   double full_seconds = 0, quick_seconds = 0;
   for (const SelftestLine& line : full) full_seconds += line.seconds;
   for (const SelftestLine& line : quick) quick_seconds += line.seconds;

@@ -11,34 +11,42 @@ namespace {
 
 using test::Random;
 
+using Scalars = ::testing::Types<double, float>;
+template <class Scalar>
+class TrailingUpdate : public ::testing::Test {};
+TYPED_TEST_SUITE(TrailingUpdate, Scalars);
+
 struct Update {
   Index order, column_begin, count;
 };
 
 /// The block-lower matrix before and after, with L and W of `count` columns.
+template <class Scalar>
 struct Updated {
   BlockLayout layout;
-  std::vector<double> before, after, lower, scaled;
+  std::vector<Scalar> before, after, lower, scaled;
 };
 
-Updated apply(const Update& shape, ThreadPool* team) {
+template <class Scalar>
+Updated<Scalar> apply(const Update& shape, ThreadPool* team) {
   Random random(101);
   const BlockLayout layout = front_layout(shape.order);
   const auto rows = static_cast<std::size_t>(shape.order - shape.column_begin),
              count = static_cast<std::size_t>(shape.count);
-  Updated u{layout,
-            std::vector<double>(static_cast<std::size_t>(layout.size())),
-            {},
-            std::vector<double>(rows * count),
-            std::vector<double>((rows + 3) * count)};
+  Updated<Scalar> u{layout,
+                    std::vector<Scalar>(static_cast<std::size_t>(layout.size())),
+                    {},
+                    std::vector<Scalar>(rows * count),
+                    std::vector<Scalar>((rows + 3) * count)};
   for (auto* values : {&u.before, &u.lower, &u.scaled}) {
-    for (double& v : *values) v = test::uniform(random, -1, 1);
+    for (Scalar& v : *values) v = static_cast<Scalar>(test::uniform(random, -1, 1));
   }
   u.after = u.before;
-  EliminatedColumns columns;
+  EliminatedColumnsOf<Scalar> columns;
   pack_columns(u.lower.data(), static_cast<Index>(rows), u.scaled.data(), static_cast<Index>(rows) + 3,
                shape.column_begin, shape.order, shape.count, columns);
-  update_trailing({layout, u.after.data()}, columns, shape.count, shape.column_begin, team);
+  update_trailing(BlockLowerOf<Scalar>{layout, u.after.data()}, columns, shape.count, shape.column_begin,
+                  team);
   return u;
 }
 
@@ -46,9 +54,10 @@ const std::vector<Update> kShapes = {{10, 0, 3},     {10, 4, 1},     {300, 100, 
                                      {700, 200, 56}, {1100, 30, 20}, {450, 191, 33}, {900, 384, 192},
                                      {64, 64, 5},    {50, 10, 0}};
 
-TEST(TrailingUpdate, TakesTheProductOutOfTheNamedColumnsOnly) {
+TYPED_TEST(TrailingUpdate, TakesTheProductOutOfTheNamedColumnsOnly) {
+  using Scalar = TypeParam;
   for (const Update& shape : kShapes) {
-    Updated u = apply(shape, nullptr);
+    Updated<Scalar> u = apply<Scalar>(shape, nullptr);
     const auto rows = static_cast<std::size_t>(shape.order - shape.column_begin);
     for (Index j = 0; j < shape.order; ++j) {
       const bool inside = j >= shape.column_begin;
@@ -64,17 +73,19 @@ TEST(TrailingUpdate, TakesTheProductOutOfTheNamedColumnsOnly) {
         for (std::size_t k = 0; k < static_cast<std::size_t>(shape.count); ++k) {
           exact -= static_cast<long double>(u.lower[li + k * rows]) * u.scaled[wj + k * (rows + 3)];
         }
-        ASSERT_NEAR(u.after[at], static_cast<double>(exact), 1e-13)
+        ASSERT_NEAR(u.after[at], static_cast<double>(exact), 900 * Rounding<Scalar>::kUnit)
             << i << ", " << j << " of " << shape.order;
       }
     }
   }
 }
 
-TEST(TrailingUpdate, AnyTeamGivesTheSameBits) {
+TYPED_TEST(TrailingUpdate, AnyTeamGivesTheSameBits) {
+  using Scalar = TypeParam;
   ThreadPool two(2), three(3);
   for (const Update& shape : kShapes) {
-    const Updated alone = apply(shape, nullptr), pair = apply(shape, &two), trio = apply(shape, &three);
+    const Updated<Scalar> alone = apply<Scalar>(shape, nullptr), pair = apply<Scalar>(shape, &two),
+                          trio = apply<Scalar>(shape, &three);
     EXPECT_EQ(alone.after, pair.after);
     EXPECT_EQ(alone.after, trio.after);
   }

@@ -25,7 +25,9 @@ inline double largest_row_error(const ShiftedMatrix& matrix, const Factor& facto
   std::vector<int> eliminated(n, 0);
   for (const FactorFront& front : factor.fronts) {
     const auto lower = [&](Index i, Index k) -> long double {
-      return front.lower[Offset{k} * front.order + i];
+      long double entry = 0;
+      front.with_lower([&](const auto* entries) { entry = entries[Offset{k} * front.order + i]; });
+      return entry;
     };
     for (Index k = 0; k < front.pivots; ++k) {
       ++eliminated[static_cast<std::size_t>(front.position[k])];

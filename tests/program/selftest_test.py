@@ -24,7 +24,7 @@ class SelftestTest(ProgramTest):
             self.assertEqual(document["schema_version"], 1)
             self.assertTrue(document["ok"])
             self.assertTrue(all(test["ok"] and test["seconds"] >= 0 for test in document["tests"]))
-            self.assertEqual(len(document["tests"]), 8)
+            self.assertEqual(len(document["tests"]), 10)
 
     def test_errors(self):
         self.expect_failure(2, "cannot-write", "selftest", "--json", "no/such/folder/answer.json")

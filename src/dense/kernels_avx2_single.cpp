@@ -1,0 +1,5 @@
+// The kernels for one instruction set in single precision; the flags come from CMakeLists.txt.
+#define STANCHION_KERNEL_ISA isa_avx2
+#define STANCHION_KERNEL_SINGLE
+#define STANCHION_KERNEL_NAME "AVX2"
+#include "dense/kernels_impl.hpp"
