@@ -239,6 +239,7 @@ struct Work {
   Offset factor_entries = 0;
   Index supernodes = 0;
   Index largest_front = 0;
+  Index redone_in_double = 0;  ///< factorizations in single precision that could not certify themselves
   Offset delayed_pivots = 0;
   Offset two_by_two_pivots = 0;
   Index factorizations = 0;

@@ -17,6 +17,8 @@ enum class Pencil {
 };
 
 enum class Precision {
+  kAutomatic,  ///< double, and single where it is forecast faster and certifies itself
+  kSingle,     ///< factored in single precision, certified in double by the relative test, or unresolved
   kDouble,
   kExtended,  ///< factored in double-double: slow, for what double cannot tell apart
 };
@@ -109,7 +111,7 @@ struct Request {
   double risk = 1e-6;
   std::optional<int> digits;
   std::uint64_t seed = 1;
-  Precision precision = Precision::kDouble;
+  Precision precision = Precision::kAutomatic;
   bool want_witness = false;   ///< check: also look for x with x^T A x < 0 beyond its rounding
   bool want_location = false;  ///< check: also where the zero, negative and weak directions are
   LocateOptions locate;

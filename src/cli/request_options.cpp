@@ -2,11 +2,13 @@
 
 #include <fmt/format.h>
 
+#include <algorithm>
 #include <filesystem>
 #include <fstream>
 #include <limits>
 
 #include "model/byte_size.hpp"
+#include "model/names.hpp"
 #include "model/validate.hpp"
 
 namespace stanchion::cli {
@@ -58,8 +60,12 @@ void declare_model_files(Arguments& arguments, RequestOptions& options) {
 void declare_numbers(Arguments& arguments, RequestOptions& options, Question question) {
   arguments.group("Certificate");
   if (question != Question::kForecast) {
-    arguments.text("--precision", options.precision, "double|extended",
-                   "extended: factor in double-double, slow, for what double cannot tell apart");
+    const bool single =
+        question != Question::kBracket && question != Question::kAudit && question != Question::kLocate;
+    arguments.text("--precision", options.precision, single ? "single|double|extended" : "double|extended",
+                   single ? "single: half the memory, or no answer; extended: slow, for what double cannot "
+                            "tell apart (default: double, or single where it is faster and certifies itself)"
+                          : "extended: factor in double-double, slow, for what double cannot tell apart");
   }
   arguments.real("--resolution", options.resolution, "c",
                  "what counts as zero, in units of the scaled matrix");
@@ -144,12 +150,15 @@ Status fill_numbers(const RequestOptions& options, Request& request) {
     request.seed = static_cast<std::uint64_t>(*options.seed);
   }
   if (options.precision) {
-    if (*options.precision != "double" && *options.precision != "extended") {
+    const auto given = {Precision::kSingle, Precision::kDouble, Precision::kExtended};
+    const auto* const found = std::find_if(given.begin(), given.end(),
+                                           [&](Precision p) { return name_of(p) == *options.precision; });
+    if (found == given.end()) {
       return Status::bad_usage("bad-precision",
-                               fmt::format("'{}' is neither double nor extended", *options.precision),
-                               "--precision", "leave it out for double precision, or ask for extended");
+                               fmt::format("'{}' is none of single, double and extended", *options.precision),
+                               "--precision", "leave it out for the usual choice, or name one of the three");
     }
-    request.precision = *options.precision == "extended" ? Precision::kExtended : Precision::kDouble;
+    request.precision = *found;
   }
   request.analysis_store = options.analysis_store;
   request.resolution = options.resolution;

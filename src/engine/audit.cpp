@@ -51,7 +51,7 @@ class Audit {
 
  private:
   bool fast() const {
-    return !request_.digits && !request_.resolution && request_.precision == Precision::kDouble &&
+    return !request_.digits && !request_.resolution && request_.precision != Precision::kExtended &&
            !counter_.constrained();
   }
 

@@ -70,7 +70,7 @@ class Bracketer {
   /// The residual intervals hold for the numbers as written, in double precision, from a definite matrix.
   bool uses_residuals() const {
     return asked_.method == BracketMethod::kResidual && !request_.digits && !request_.resolution &&
-           request_.precision == Precision::kDouble && !counter_.constrained();
+           request_.precision != Precision::kExtended && !counter_.constrained();
   }
 
   // ---- is there none

@@ -25,11 +25,11 @@ bool definite_expected(const Request& request, bool multipliers) {
 void forecast_time(const PreparedPencil& pencil, const Request& request, bool definite,
                    ForecastOutcome& forecast) {
   const Analysis& analysis = pencil.analysis();
-  const HostRates rates = measure_host();
+  const LikelyWork work = pencil.likely_work(definite);
+  const HostRates rates = measure_host(work.single);
   const bool extended = request.precision == Precision::kExtended;
   const double each = extended ? extended_seconds_forecast(analysis) : factorization_seconds(analysis, rates);
   const double test = relative_test_seconds(analysis, pencil.entries(), rates);
-  const LikelyWork work = pencil.likely_work(definite);
   forecast.factorization_seconds = each;
   forecast.factorizations = work.factorizations;
   forecast.relative_test = work.relative;

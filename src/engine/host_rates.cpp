@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 #include <numeric>
+#include <type_traits>
 #include <vector>
 
 #include "base/clock.hpp"
@@ -26,23 +27,25 @@ struct FrontSize {
 constexpr std::array<FrontSize, 4> kFrontSizes{{{16, 6}, {64, 24}, {256, 96}, {768, 256}}};
 
 /// Seconds to eliminate one front, diagonally dominant, with pivoting and the fault-detecting vector.
-double front_seconds(FrontSize size, EliminationScratch& scratch) {
+template <class Scalar>
+double front_seconds(FrontSize size, EliminationScratchOf<Scalar>& scratch) {
   const auto order = static_cast<std::size_t>(size.order), pivots = static_cast<std::size_t>(size.pivots);
   const BlockLayout layout = front_layout(size.order);
-  Buffer<double> entries(layout.size());
-  std::vector<double> diagonal(pivots), off_diagonal(pivots), row_error(order), growth(order),
-      sign(order, 1.0), image(order), image_error(order);
+  Buffer<Scalar> entries(layout.size());
+  std::vector<double> diagonal(pivots), off_diagonal(pivots);
+  std::vector<Scalar> row_error(order), growth(order), sign(order, Scalar{1}), image(order),
+      image_error(order);
   std::vector<PivotKind> kind(pivots);
   std::vector<Index> label(order);
   double fastest = INFINITY;
   for (int round = 0; round < kRounds; ++round) {
-    std::fill(entries.begin(), entries.end(), 1.0 / size.order);
-    const BlockLower matrix{layout, entries.data()};
+    std::fill(entries.begin(), entries.end(), Scalar{1} / static_cast<Scalar>(size.order));
+    const BlockLowerOf<Scalar> matrix{layout, entries.data()};
     for (Index j = 0; j < size.order; ++j) *matrix.column(j, j) = 2;
     for (auto* zeros : {&row_error, &growth, &image, &image_error})
-      std::fill(zeros->begin(), zeros->end(), 0.0);
+      std::fill(zeros->begin(), zeros->end(), Scalar{0});
     std::iota(label.begin(), label.end(), 0);
-    const Front front{
+    const FrontOf<Scalar> front{
         matrix,           size.pivots,   {diagonal.data(), off_diagonal.data(), kind.data()}, label.data(),
         row_error.data(), growth.data(), {sign.data(), image.data(), image_error.data()}};
     const Stopwatch watch;
@@ -100,7 +103,7 @@ struct SmallModel {
 };
 
 /// What a small model shows: the time of a factorization beyond its eliminations, and the relative test.
-void measure_small_model(HostRates& rates) {
+void measure_small_model(HostRates& rates, bool single) {
   SmallModel model;
   if (!model.usable) return;
   const AssemblyTree& tree = model.analysis.tree;
@@ -111,6 +114,7 @@ void measure_small_model(HostRates& rates) {
   for (int round = 0; round < kRounds; ++round) {
     FactorOptions options;
     options.keep_factor = round == 0;
+    options.single = single;
     const auto factorization = factorize(model.analysis, matrix, options, model.pool);
     if (!factorization.ok() || factorization->breakdown) return;
     factoring = std::min(factoring, factorization->seconds);
@@ -127,18 +131,23 @@ void measure_small_model(HostRates& rates) {
   if (std::isfinite(testing)) rates.seconds_per_tested_entry = testing / tested;
 }
 
-}  // namespace
-
-HostRates measure_host() {
-  use_single_threaded_blas();
+template <class Scalar>
+HostRates measure() {
   HostRates rates;
-  EliminationScratch scratch;
+  EliminationScratchOf<Scalar> scratch;
   for (std::size_t k = 0; k < kFrontSizes.size(); ++k) {
     const FrontSize size = kFrontSizes[k];
     rates.fronts[k] = {front_flops(size.order, size.pivots), std::max(front_seconds(size, scratch), 1e-9)};
   }
-  measure_small_model(rates);
+  measure_small_model(rates, std::is_same_v<Scalar, float>);
   return rates;
+}
+
+}  // namespace
+
+HostRates measure_host(bool single) {
+  use_single_threaded_blas();
+  return single ? measure<float>() : measure<double>();
 }
 
 double factorization_seconds(const Analysis& analysis, const HostRates& rates) {

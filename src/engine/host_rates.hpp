@@ -23,10 +23,10 @@ struct HostRates {
 constexpr double kTestedEntriesPerDatum = 6;
 
 /// Times four fronts of different sizes with the kernels in use, and one small model from its factorization
-/// to its relative test. Throws std::bad_alloc.
-HostRates measure_host();
+/// to its relative test, in double or in single precision. Throws std::bad_alloc.
+HostRates measure_host(bool single = false);
 
-/// One factorization in double by the workers of `analysis`.
+/// One factorization, in the precision that was measured, by the workers of `analysis`.
 double factorization_seconds(const Analysis& analysis, const HostRates& rates);
 
 /// The relative test on a kept factor; `entries` of the matrix.

@@ -14,6 +14,7 @@ namespace {
 void book(const CertifiedInertia& certified, Outcome& outcome) {
   outcome.timings.factor += certified.seconds;
   outcome.work.factorizations += certified.factorizations;
+  outcome.work.redone_in_double += certified.redone_in_double;
   outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, certified.delayed_pivots);
   outcome.work.two_by_two_pivots = std::max(outcome.work.two_by_two_pivots, certified.two_by_two_pivots);
 }
@@ -22,7 +23,9 @@ void book(const CertifiedInertia& certified, Outcome& outcome) {
 
 Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options,
                                              ThreadPool& pool, Outcome& outcome) {
-  return run_on(matrix, {options, nullptr, seed_, bytes_for_factor(), nullptr}, *risk_, pool, outcome);
+  auto found = run_on(matrix, {options, nullptr, seed_, bytes_for_factor()}, *risk_, pool, outcome);
+  if (found.ok() && found->single_hopeless && single_ == SingleUse::kWhereFaster) single_ = SingleUse::kNever;
+  return found;
 }
 
 Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, const CertifyOptions& options,
@@ -30,6 +33,7 @@ Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, con
   CertifyOptions certify_options = options;
   certify_options.risk = extended_ ? nullptr : &risk;
   certify_options.offsets.extended = extended_;
+  certify_options.single = single_;
   const ShiftedMatrix second = second_alone();
   if (has_second_) certify_options.second = &second;
   const std::size_t charges_before = risk.charges().size();
@@ -45,8 +49,11 @@ Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, con
   }
   outcome.timings.certify += certified->certify_seconds;
   if (certified->certify_seconds > 0) {  // a factor was kept
+    const StructureForecast& forecast = analysis_.forecast;
+    const bool single = certified->certificate.precision == "single";
     outcome.memory.forecast = std::max(
-        outcome.memory.forecast, resident_before_ + with_allowance(analysis_.forecast.peak_bytes_solve));
+        outcome.memory.forecast,
+        resident_before_ + with_allowance(single ? forecast.peak_bytes_single : forecast.peak_bytes_solve));
   }
   book(*certified, outcome);
   return certified;
@@ -73,6 +80,8 @@ void PreparedPencil::merge(const Outcome& scratch, Outcome& outcome) {
   outcome.timings.certify += scratch.timings.certify;
   outcome.memory.forecast = std::max(outcome.memory.forecast, scratch.memory.forecast);
   outcome.work.factorizations += scratch.work.factorizations;
+  outcome.work.redone_in_double += scratch.work.redone_in_double;
+  if (scratch.work.redone_in_double > 0 && single_ == SingleUse::kWhereFaster) single_ = SingleUse::kNever;
   outcome.work.delayed_pivots = std::max(outcome.work.delayed_pivots, scratch.work.delayed_pivots);
   outcome.work.two_by_two_pivots = std::max(outcome.work.two_by_two_pivots, scratch.work.two_by_two_pivots);
   outcome.warnings.insert(outcome.warnings.end(), scratch.warnings.begin(), scratch.warnings.end());

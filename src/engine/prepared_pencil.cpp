@@ -178,6 +178,8 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   pencil.resolution_ = request.resolution;
   pencil.memory_cap_ = request.memory_cap_bytes;
   pencil.extended_ = request.precision == Precision::kExtended;
+  if (request.precision == Precision::kSingle) pencil.single_ = SingleUse::kOnly;
+  if (request.precision == Precision::kAutomatic) pencil.single_ = SingleUse::kWhereFaster;
   // One document, one budget: matrices that were certified before this one have charged it already.
   pencil.risk_ =
       std::make_shared<RiskBudget>(request.risk, outcome.risk, static_cast<Index>(outcome.events.size()));
@@ -211,8 +213,9 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   return pencil;
 }
 
-/// Of a factorization whose factor is not kept, in the precision asked for.
+/// Of a factorization whose factor is not kept, in the precision asked for; in single precision it is kept.
 Offset PreparedPencil::counting_bytes() const {
+  if (single_ == SingleUse::kOnly) return analysis_.forecast.peak_bytes_single;
   return extended_ ? extended_peak_bytes_forecast(analysis_) : analysis_.forecast.peak_bytes_count;
 }
 
@@ -248,6 +251,7 @@ LikelyWork PreparedPencil::likely_work(bool definite_first) const {
   options.offsets.definite_first = definite_first;
   options.offsets.resolution = resolution_;
   options.risk = extended_ ? nullptr : risk_.get();
+  options.single = single_;
   options.most_factor_bytes = bytes_for_factor();
   return stanchion::likely_work(analysis_, options);
 }

@@ -149,6 +149,7 @@ class PreparedPencil {
   std::vector<Index> original_;  ///< see ModelInput
   Index file_rows_ = 0;
   bool has_second_ = false, extended_ = false;
+  SingleUse single_ = SingleUse::kNever;  ///< for the counts to come: what failed badly is not tried again
   double second_bound_ = 0;
   Offset resident_before_ = 0;  ///< of the process, before the first factorization
   std::optional<double> resolution_;

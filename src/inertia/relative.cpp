@@ -171,7 +171,7 @@ class RelativeTest {
   /// 42 u times the row sums of |L||D||L^T|; for 1x1 pivots |T||T|^T = |D|, for 2x2 it is at most 1.7 |b| in
   /// every entry.
   double root_growth() const {
-    const double growth = factorization_.error_bound / (42 * kUnit);
+    const double growth = factorization_.error_bound / (42 * factorization_.unit_roundoff);
     return pair_spread_ > 0 ? 1.7 * (1 + pair_spread_) * growth : growth;
   }
 

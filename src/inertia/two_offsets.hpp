@@ -34,6 +34,8 @@ struct CertifiedInertia {
   Certificate certificate;
   std::string unresolved_because;  ///< empty when certificate.level is proved
   Index factorizations = 0;
+  Index redone_in_double = 0;    ///< factorizations in single precision whose bound did not close
+  bool single_hopeless = false;  ///< one of them was far from closing: other shifts will hardly fare better
   Offset delayed_pivots = 0, two_by_two_pivots = 0, peak_bytes = 0;
   double exclusion_radius =
       0;               ///< relative test with a second matrix B: A + t B is nonsingular for |t| below; or 0

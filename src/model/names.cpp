@@ -109,7 +109,17 @@ const char* name_of(Pencil pencil) {
 }
 
 const char* name_of(Precision precision) {
-  return precision == Precision::kExtended ? "extended" : "double";
+  switch (precision) {
+    case Precision::kAutomatic:
+      return "automatic";
+    case Precision::kSingle:
+      return "single";
+    case Precision::kDouble:
+      return "double";
+    case Precision::kExtended:
+      break;
+  }
+  return "extended";
 }
 
 const char* name_of(StatusKind kind) {

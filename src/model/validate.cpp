@@ -41,9 +41,22 @@ Status validate_matrices(const Request& request, Question question) {
   if (question == Question::kLocate && named == Pencil::kGeometric) {
     return contradiction("--geometric", "locate judges one matrix", "use --add FILE:factor for a fixed load");
   }
-  if ((question == Question::kLocate || request.want_location) && request.precision == Precision::kExtended) {
+  const bool locating = question == Question::kLocate || request.want_location;
+  if (locating && (request.precision == Precision::kExtended || request.precision == Precision::kSingle)) {
     return contradiction("--precision", "causes are located with a factor in double precision",
                          "leave --precision out, or ask check without --locate");
+  }
+  if (request.precision == Precision::kSingle) {
+    if (question == Question::kBracket || question == Question::kAudit) {
+      return contradiction("--precision", "values are enclosed with a factor in double precision",
+                           "leave --precision out; single goes with check, count and sweep");
+    }
+    if (request.resolution || request.digits) {
+      return contradiction(
+          "--precision single, " + std::string(request.resolution ? "--resolution" : "--digits"),
+          "the relative test that certifies a factor in single precision has no resolution",
+          "leave one of the two out");
+    }
   }
   if (input.load_sign_minus && !input.geometric) {
     return contradiction("--load-sign", "there is no geometric stiffness whose sign it could give",

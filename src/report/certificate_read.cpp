@@ -268,7 +268,9 @@ void read_question(const Member& question, Request& request) {
         unless_null(question.at("safety"), [](const Member& m) { return m.truth(); }).value_or(false);
   }
   if (question.has("list") && !question.at("list").is_null()) read_list(question.at("list"), request.audit);
-  request.precision = question.at("precision").named({Precision::kDouble, Precision::kExtended});
+  request.precision =
+      question.at("precision")
+          .named({Precision::kAutomatic, Precision::kSingle, Precision::kDouble, Precision::kExtended});
 }
 
 CertificateDocument document_of(const Member& root) {

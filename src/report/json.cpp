@@ -163,6 +163,7 @@ Json json_of(const Work& work) {
           {"factor_entries", work.factor_entries},
           {"supernodes", work.supernodes},
           {"largest_front", work.largest_front},
+          {"redone_in_double", work.redone_in_double},
           {"delayed_pivots", work.delayed_pivots},
           {"two_by_two_pivots", work.two_by_two_pivots},
           {"factorizations", work.factorizations},

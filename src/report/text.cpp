@@ -27,6 +27,10 @@ void write_work(Page& page, const Outcome& outcome) {
   page.row("work", fmt::format("{} of {}{}, {} entries in L", counted(work.factorizations, "factorization"),
                                flops_in_words(work.factor_flops), work.factorizations > 1 ? " each" : "",
                                grouped(work.factor_entries)));
+  if (work.redone_in_double > 0) {
+    page.row("", fmt::format("{} in single precision did not certify itself and was done again in double",
+                             counted(work.redone_in_double, "factorization")));
+  }
   page.row("fronts",
            fmt::format("{}, the largest with {} rows; {} handed up, {} two by two", grouped(work.supernodes),
                        grouped(work.largest_front), counted(work.delayed_pivots, "pivot"),

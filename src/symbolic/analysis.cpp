@@ -47,6 +47,11 @@ Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
   constexpr Offset kTest = (10 * 8 + 4) * kDouble;
   forecast.peak_bytes_solve = std::max(forecast.peak_bytes_count, Offset{analysis.tree.rows} * kTest) +
                               forecast.stored_factor_entries * kDouble;
+  constexpr Offset kSingle = sizeof(float);
+  const Offset single_fronts =
+      analysis.schedule.peak_doubles * kSingle + Offset{analysis.tree.rows} * kFaultProbe;
+  forecast.peak_bytes_single =
+      std::max(single_fronts, Offset{analysis.tree.rows} * kTest) + forecast.stored_factor_entries * kSingle;
   analysis.analyse_seconds = watch.seconds();
   return analysis;
 }

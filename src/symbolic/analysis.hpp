@@ -15,8 +15,9 @@ struct StructureForecast {
   double front_flops = 0;            ///< as executed, relaxation zeros included
   Offset stored_factor_entries = 0;  ///< as kept in solve mode, relaxation zeros included
   Index largest_front = 0;
-  Offset peak_bytes_count = 0;  ///< numeric phase, factor discarded
-  Offset peak_bytes_solve = 0;  ///< numeric phase, factor kept, and passes over it with blocks of vectors
+  Offset peak_bytes_count = 0;   ///< numeric phase, factor discarded
+  Offset peak_bytes_solve = 0;   ///< numeric phase, factor kept, and passes over it with blocks of vectors
+  Offset peak_bytes_single = 0;  ///< the same in single precision, the vectors in double
 };
 
 struct Analysis {

@@ -172,6 +172,33 @@ TEST(CertificateProperty, StatisticalStatementsAreWrongNoMoreOftenThanTheirRisk)
   RecordProperty("certified", certified);
 }
 
+TEST(CertificateProperty, NoWrongStatementInSinglePrecision) {
+  Random random = cases_of(9);
+  int certified = 0, mild = 0, mild_open = 0;
+  for (int number = 0; number < cases(); ++number) {
+    const SymmetricMatrix matrix = trouble(random, number);
+    const auto truth = test::exact_inertia(matrix);
+    const auto prepared = test::prepare(matrix);
+    RiskBudget risk(1e-6);
+    CertifyOptions options;
+    options.risk = &risk;
+    options.seed = random();
+    options.most_factor_bytes = Offset{1} << 40;
+    options.single = SingleUse::kOnly;
+    const auto found = certify_inertia(prepared.analysis, prepared.shifted(0), options, *prepared.pool);
+    ASSERT_TRUE(found.ok()) << found.status().to_string();
+    EXPECT_TRUE(right(*found, truth)) << "case " << number;
+    EXPECT_EQ(found->factorizations, 1);
+    const bool open = found->certificate.level == Level::kNone;
+    certified += !open;
+    if (truth.zero > 0 || condition_power(matrix) > 2) continue;
+    ++mild;
+    mild_open += open;
+  }
+  RecordProperty("certified", certified);
+  EXPECT_LE(mild_open, mild / 20) << "clear cases must be answered";
+}
+
 TEST(CertificateProperty, NoWrongStatementAtTheDefaultRisk) {
   Random random = cases_of(8);
   std::map<int, std::pair<int, int>> by_condition;  // power of ten -> nonsingular cases, left open

@@ -40,6 +40,28 @@ class PrecisionTest(ProgramTest):
         self.assertEqual(double["verdict"], "positive_semidefinite")
         self.assertIn("last-resort", [warning["code"] for warning in double["warnings"]])
 
+    def test_single_certifies_itself_or_says_that_it_cannot(self):
+        path = self.matrix("K.mtx", 40, chain(40))
+        document = self.expect(0, "check", path, "--precision", "single")
+        self.assertEqual(document["certificate"]["precision"], "single")
+        self.assertEqual(document["certificate"]["level"], "statistical")
+        self.assertEqual(document["inertia"]["positive"], 40)
+        self.assertIn("in single precision", self.run_program("check", path, "--precision", "single").stdout)
+        counted = self.expect(0, "count", path, "--at", "0.5", "--precision", "single")
+        usual = self.expect(0, "count", path, "--at", "0.5")
+        self.assertEqual(counted["counts"][0]["certificate"]["precision"], "single")
+        self.assertEqual(counted["counts"][0]["below"], usual["counts"][0]["below"])
+        document = self.expect(3, "check", self.matrix("R.mtx", 8000, ring(8000)), "--precision", "single")
+        self.assertEqual(document["certificate"]["level"], "none")
+        self.assertIn("leave --precision out", " ".join(w["message"] for w in document["warnings"]))
+
+    def test_single_where_it_does_not_go(self):
+        path = self.matrix("K.mtx", 4, chain(4))
+        for command in (["check", path, "--locate"], ["check", path, "--digits", "6"],
+                        ["check", path, "--resolution", "1e-6"], ["locate", path]):
+            with self.subTest(command):
+                self.expect_failure(2, "contradiction", *command, "--precision", "single")
+
     def test_extended_needs_more_memory_and_says_so_beforehand(self):
         self.run_program("specimen", "solid", "--unknowns", "12000", "--out", "solid")
         forecast, peak = {}, {}
@@ -57,7 +79,7 @@ class PrecisionTest(ProgramTest):
 
     def test_other_words(self):
         path = self.matrix("K.mtx", 4, chain(4))
-        for value in ("single", "Double", ""):
+        for value in ("half", "Double", ""):
             with self.subTest(value):
                 self.assertIn("--precision", self.expect_failure(2, "bad-precision", "check", path, "--precision", value))
 
