@@ -23,8 +23,8 @@ Offset single_bytes(const StructureForecast& forecast) {
 }
 
 /// Operations for every entry of L below which the passes over L, not the arithmetic, are most of the work.
-/// Where elements fill a volume and L is much denser, the conditioning is milder, too. Measured, see
-/// DEVELOPERS.md.
+/// Where elements fill a volume and L is much denser, the conditioning is milder, too. Solids, frames and
+/// saddle points of 20,000 to 30,000 unknowns have about 900 to 1,000, a plate of 50,000 has 150.
 constexpr double kOperationsAnEntry = 700;
 
 bool single_is_faster(const StructureForecast& forecast) {
