@@ -7,8 +7,8 @@
 
 namespace stanchion {
 
-/// Calls work(begin, end) for runs of `grain` indices that cover [0, size); which thread takes which run is not
-/// reproducible, the runs themselves are.
+/// Calls work(begin, end) for runs of `grain` indices that cover [0, size); which thread takes which run is
+/// not reproducible, the runs themselves are.
 template <class Work>
 void for_ranges(ThreadPool& pool, Offset size, Offset grain, const Work& work) {
   if (size <= grain) {

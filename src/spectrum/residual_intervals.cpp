@@ -122,7 +122,8 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
   extended_times(second, x.data(), cx.data(), base.pool());
   ThreadPool& pool = base.pool();
   const Sums energy = dots(pool, x, bx), work = dots(pool, x, cx);
-  const AbsoluteNorm base_size = absolute_norm(base.matrix(), pool), second_size = absolute_norm(second, pool);
+  const AbsoluteNorm base_size = absolute_norm(base.matrix(), pool),
+                     second_size = absolute_norm(second, pool);
   const Sums x_norm = norms(pool, x), b_norm = norms(pool, bx), c_norm = norms(pool, cx);
   Sums theta{};
   for (std::size_t v = 0; v < kV; ++v) theta[v] = energy[v] > 0 ? work[v] / energy[v] : 0;

@@ -31,10 +31,11 @@ struct Tried {
 Tried tried(const std::string& script, Offset memory_cap) {
   const TestFolder folder;
   folder.write("K.mtx", "some bytes");
-  const std::string program = folder.write("program", "#!/bin/sh\necho x >> '" + (folder / "runs") + "'\n" + script);
+  const std::string program =
+      folder.write("program", "#!/bin/sh\necho x >> '" + (folder / "runs") + "'\n" + script);
   EXPECT_EQ(::chmod(program.c_str(), 0755), 0);
-  const auto jobs = read_job_list(R"({"id": "a", "command": "check", "inputs": {"stiffness": "K.mtx"}})", "jobs",
-                                  folder.path(), rules());
+  const auto jobs = read_job_list(R"({"id": "a", "command": "check", "inputs": {"stiffness": "K.mtx"}})",
+                                  "jobs", folder.path(), rules());
   EXPECT_TRUE(jobs.ok()) << jobs.status().message();
   auto results = ResultFile::open(folder / "results.jsonl");
   EXPECT_TRUE(results.ok());
