@@ -28,7 +28,7 @@ void write_work(Page& page, const Outcome& outcome) {
                                flops_in_words(work.factor_flops), work.factorizations > 1 ? " each" : "",
                                grouped(work.factor_entries)));
   if (work.redone_in_double > 0) {
-    page.row("", fmt::format("{} in single precision did not certify itself and was done again in double",
+    page.row("", fmt::format("{} in single precision, not certified; done again in double",
                              counted(work.redone_in_double, "factorization")));
   }
   page.row("fronts",

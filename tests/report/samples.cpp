@@ -13,7 +13,7 @@ Outcome base(const char* command, Question question) {
   outcome.host = {2, "a BLAS", "AVX2"};
   outcome.rows_analysed = 29796;
   outcome.timings = {0.123, 0.05, 0.02, 0.0831, 0.04, 0.33};
-  outcome.work = {4.6e9, 12345678, 1234, 1020, 2, 3, 2};
+  outcome.work = {4.6e9, 12345678, 1234, 1020, 0, 2, 3, 2};
   outcome.memory = {120000000, 118000000};
   Request request;
   outcome.not_checked = not_checked(request, question);
