@@ -53,6 +53,10 @@ void certify(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchA
   options.offsets.definite_first = arguments.definite;
   options.risk = &risk;
   options.most_factor_bytes = kMostFactor;
+  constexpr Offset kEntriesOfVolumes = 30;  // as in engine/prepared_pencil.cpp
+  if (matrix.family->entries() >= kEntriesOfVolumes * matrix.family->rows) {
+    options.single = SingleUse::kWhereFaster;
+  }
   const CertifiedInertia found = take(certify_inertia(analysis, matrix, options, pool));
   record.factorizations = found.factorizations;
   record.delayed_pivots = found.delayed_pivots;
@@ -60,6 +64,7 @@ void certify(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchA
   record.level = found.certificate.level == Level::kProved ? "proved" : "statistical";
   if (found.certificate.level == Level::kNone) record.level = "none";
   record.method = found.certificate.method.value_or("");
+  if (found.certificate.precision == "single") record.method += ", single precision";
   record.valid = found.certificate.level != Level::kNone && found.inertia.zero == 0;
   record.definite = found.inertia.positive == analysis.tree.rows;
   record.error_bound = found.certificate.error_bound;
