@@ -238,7 +238,8 @@ class LimitTest(ServiceTest):
                         entry.write(data or bytes(10_000_000))
         (self.models / "bomb.npz").write_bytes(archive.getvalue())
         for name in ("bomb.mtx.gz", "bomb.npz"):
-            job = service.wait(service.submit({"command": "check", "inputs": {"stiffness": "models/" + name}})["id"])
+            job = service.submit({"command": "check", "inputs": {"stiffness": "models/" + name}})["id"]
+            job = service.wait(job, seconds=400)  # 450 MB to unpack, slow under a sanitizer
             self.assertEqual(job["state"], "failed", job)
             self.assertIn(job["exit_code"], (2, 4))
             self.assertTrue(job["problem"]["detail"])
