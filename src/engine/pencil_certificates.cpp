@@ -50,7 +50,10 @@ Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, con
   outcome.timings.certify += certified->certify_seconds;
   if (certified->certify_seconds > 0) {  // a factor was kept
     const StructureForecast& forecast = analysis_.forecast;
-    const bool single = certified->certificate.precision == "single";
+    // Where memory is short L alone may be in single precision, and the fronts in double.
+    const bool single = certified->certificate.precision == "single" &&
+                        (certify_options.single == SingleUse::kOnly ||
+                         forecast.peak_bytes_solve <= certify_options.most_factor_bytes);
     outcome.memory.forecast = std::max(
         outcome.memory.forecast,
         resident_before_ + with_allowance(single ? forecast.peak_bytes_single : forecast.peak_bytes_solve));
