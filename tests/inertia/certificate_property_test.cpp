@@ -117,6 +117,15 @@ bool right(const CertifiedInertia& found, const test::ExactInertia& truth) {
          inertia.positive + inertia.zero >= truth.positive;
 }
 
+/// Statistical statements allowed, and memory for any factor.
+CertifyOptions with_risk(RiskBudget& risk, std::uint64_t seed) {
+  CertifyOptions options;
+  options.risk = &risk;
+  options.seed = seed;
+  options.most_factor_bytes = Offset{1} << 40;
+  return options;
+}
+
 TEST(CertificateProperty, NoWrongStatementAtLevelProved) {
   Random random = cases_of(20261201);
   int wrong = 0, unsettled = 0, clear = 0;
@@ -180,10 +189,7 @@ TEST(CertificateProperty, NoWrongStatementInSinglePrecision) {
     const auto truth = test::exact_inertia(matrix);
     const auto prepared = test::prepare(matrix);
     RiskBudget risk(1e-6);
-    CertifyOptions options;
-    options.risk = &risk;
-    options.seed = random();
-    options.most_factor_bytes = Offset{1} << 40;
+    CertifyOptions options = with_risk(risk, random());
     options.single = SingleUse::kOnly;
     const auto found = certify_inertia(prepared.analysis, prepared.shifted(0), options, *prepared.pool);
     ASSERT_TRUE(found.ok()) << found.status().to_string();
@@ -207,10 +213,7 @@ TEST(CertificateProperty, NoWrongStatementAtTheDefaultRisk) {
     const auto truth = test::exact_inertia(matrix);
     const auto prepared = test::prepare(matrix);
     RiskBudget risk(1e-6);
-    CertifyOptions options;
-    options.risk = &risk;
-    options.seed = random();
-    options.most_factor_bytes = Offset{1} << 40;
+    CertifyOptions options = with_risk(risk, random());
     options.offsets.definite_first = number % 2 == 1;
     const auto found = certify_inertia(prepared.analysis, prepared.shifted(0), options, *prepared.pool);
     ASSERT_TRUE(found.ok());
