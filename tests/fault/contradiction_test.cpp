@@ -17,14 +17,14 @@ std::atomic<long> lie_from{-1}, fronts{0};
 
 }  // namespace
 
-extern "C" stanchion::SignCount
-__real__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi(  // NOLINT: the linker's name
-    const stanchion::PivotArrays& pivots, stanchion::Index count);
+// Under the linker's names for the function that is called and the one that is there (--wrap).
+stanchion::SignCount right_signs(const stanchion::PivotArrays& pivots, stanchion::Index count) __asm__(
+    "__real__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi");
+stanchion::SignCount wrong_signs(const stanchion::PivotArrays& pivots, stanchion::Index count) __asm__(
+    "__wrap__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi");
 
-extern "C" stanchion::SignCount
-__wrap__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi(  // NOLINT: the linker's name
-    const stanchion::PivotArrays& pivots, stanchion::Index count) {
-  stanchion::SignCount signs = __real__ZN9stanchion14sign_of_pivotsERKNS_11PivotArraysEi(pivots, count);
+stanchion::SignCount wrong_signs(const stanchion::PivotArrays& pivots, stanchion::Index count) {
+  stanchion::SignCount signs = right_signs(pivots, count);
   const long number = fronts++;
   if (lie_from >= 0 && number >= lie_from) {
     signs.positive += signs.negative;
