@@ -3,6 +3,7 @@
 // (Timoshenko and Gere, Theory of Elastic Stability, 1961), plates (Timoshenko and Gere; Leissa, Vibration of
 // Plates, 1969) recomputed from their equations; the file names its sources. A mesh converges: its error must
 // fall, by the order of the element, not only be small.
+#include <array>
 #include <cmath>
 #include <fstream>
 #include <nlohmann/json.hpp>
@@ -76,18 +77,63 @@ TEST_F(Published, EulerColumnsForAllSixEndConditions) {
   }
 }
 
-TEST_F(Published, HigherLoadsOfColumns) {
+/// The k-th root of tan x = x: every (k + 1/2) pi is just above one; x = k pi + atan x contracts there.
+double root_of_tangent(int k) {
+  double x = (k + 0.5) * std::numbers::pi;
+  for (int step = 0; step < 60; ++step) x = k * std::numbers::pi + std::atan(x);
+  return x;
+}
+
+/// P L^2 / (E I) of the three lowest loads. The published file has all of them for fixed ends, two for a
+/// pinned one; the rest are the closed forms that its first loads come from (Timoshenko and Gere, ch. 2; from
+/// memory).
+std::vector<double> three_loads(const std::string& ends) {
   const auto& closed = published()["closed_form"];
-  const EndSupport kFixed{true, true}, kPinned{true, false};
-  for (const auto& [name, high] :
-       {std::pair{"euler_fixed_fixed_first3", kFixed}, std::pair{"euler_fixed_pinned_first2", kPinned}}) {
-    const BeamModel column = straight_member(60, kFixed, high, 0);
-    const auto& exact = closed[name];
-    const auto found =
-        first_values(column.stiffness(), column.geometric(), false, static_cast<Index>(exact.size()));
-    ASSERT_EQ(found.size(), exact.size());
-    for (std::size_t k = 0; k < exact.size(); ++k)
-      EXPECT_NEAR(found[k].value / real(exact[k]), 1, 1e-5) << name;
+  const auto square = [](double x) { return x * x; };
+  std::vector<double> loads;
+  for (int k = 1; k <= 3; ++k) {
+    if (ends == "fixed-fixed") {
+      loads.push_back(real(closed["euler_fixed_fixed_first3"][static_cast<std::size_t>(k - 1)]));
+    } else if (ends == "fixed-pinned") {
+      loads.push_back(square(root_of_tangent(k)));
+    } else if (ends == "pinned-pinned" || ends == "fixed-guided") {
+      loads.push_back(square(k * std::numbers::pi));
+    } else {  // quarter waves: fixed-free, pinned-guided
+      loads.push_back(square((k - 0.5) * std::numbers::pi));
+    }
+  }
+  EXPECT_NEAR(loads[0] / real(closed["euler_P_L2_over_EI"][ends]), 1, 1e-14);
+  if (ends == "fixed-pinned") {
+    EXPECT_NEAR(loads[1] / real(closed["euler_fixed_pinned_first2"][1]), 1, 1e-14);
+  }
+  return loads;
+}
+
+TEST_F(Published, SecondAndThirdLoadsOfColumnsConvergeWithOrderFour) {
+  const EndSupport kFixed{true, true}, kPinned{true, false}, kFree{false, false}, kGuided{false, true};
+  const std::tuple<const char*, EndSupport, EndSupport> cases[] = {
+      {"fixed-free", kFixed, kFree},     {"pinned-pinned", kPinned, kPinned},
+      {"fixed-pinned", kFixed, kPinned}, {"fixed-fixed", kFixed, kFixed},
+      {"fixed-guided", kFixed, kGuided}, {"pinned-guided", kPinned, kGuided}};
+  for (const auto& [name, low, high] : cases) {
+    const std::vector<double> exact = three_loads(name);
+    std::array<std::vector<double>, 3> errors;
+    std::size_t mesh = 0;
+    for (const Index elements : {12, 24, 48}) {
+      const BeamModel column = straight_member(elements, low, high, 0);
+      const auto found = first_values(column.stiffness(), column.geometric(), false, 3);
+      ASSERT_EQ(found.size(), 3u) << name;
+      for (std::size_t k = 0; k < 3; ++k) errors[mesh].push_back(found[k].value / exact[k] - 1);
+      ++mesh;
+    }
+    for (std::size_t k = 1; k < 3; ++k) {
+      SCOPED_TRACE(testing::Message() << name << ", load " << k + 1);
+      EXPECT_GT(errors[2][k], 0);  // shapes of the mesh are shapes of the column: from above
+      EXPECT_NEAR(std::log2(errors[0][k] / errors[1][k]), 4, 0.15);
+      EXPECT_NEAR(std::log2(errors[1][k] / errors[2][k]), 4, 0.05);
+      // (k h)^4 / 720 to leading order, found from the stencil of the cubic element
+      EXPECT_NEAR(errors[2][k] / (std::pow(std::sqrt(exact[k]) / 48, 4) / 720), 1, 0.02);
+    }
   }
 }
 
