@@ -6,18 +6,10 @@
 #include <vector>
 
 #include "report/model_reduction.hpp"
+#include "report/projection.hpp"
 #include "stanchion/located.hpp"
 
 namespace stanchion {
-
-/// A view: unit vectors to the right, up, and towards the eye.
-struct ViewAxes {
-  std::array<double, 3> right{1, 0, 0}, up{0, 0, 1}, toward{0, -1, 0};
-};
-
-/// The direction along which little of the motion (and of the model) is lost, a little aside so that depth
-/// shows.
-ViewAxes best_view(const Picture& picture, const std::vector<std::array<float, 3>>& shape);
 
 /// What a drawing points at.
 struct Mark {
