@@ -1,7 +1,6 @@
 #include "inertia/relative.hpp"
 
 #include <algorithm>
-#include <array>
 #include <cmath>
 #include <new>
 #include <numeric>
@@ -12,6 +11,7 @@
 #include "base/clock.hpp"
 #include "base/counter_random.hpp"
 #include "base/ranges.hpp"
+#include "numeric/block_columns.hpp"
 #include "numeric/block_solve.hpp"
 #include "numeric/extended_product.hpp"
 
@@ -22,8 +22,6 @@ constexpr Index kV = kBlockVectors;
 constexpr double kUnit = 0x1p-53;
 
 constexpr int kMostPowerSteps = 4;
-
-using Norms = std::array<double, kV>;
 
 /// The square root T of one pivot and the signs J, D ~ T J T^T. For a 2x2 pivot T^-1 = diag(1/sqrt|lambda|)
 /// Q^T is the matrix that is stored and used; T is its exact inverse.
@@ -82,27 +80,7 @@ double larger(double most, double size) {
 /// Eight vectors, kV numbers a row.
 using Block = Buffer<double>;
 
-constexpr Offset kRowsAPiece = 4096;   ///< of a block, for one thread
-constexpr Offset kFrontsAPiece = 256;  ///< likewise
-
-/// Summed piece by piece: the same for any number of threads.
-Norms column_norms(const Block& block, ThreadPool& pool) {
-  const Offset rows = block.size() / kV;
-  std::vector<Norms> partial(static_cast<std::size_t>(rows / kRowsAPiece + 1), Norms{});
-  for_ranges(pool, rows, kRowsAPiece, [&](Offset begin, Offset end) {
-    Norms sums{};
-    for (Offset i = begin * kV; i < end * kV; i += kV) {
-      for (Index v = 0; v < kV; ++v) sums[static_cast<std::size_t>(v)] += block[i + v] * block[i + v];
-    }
-    partial[static_cast<std::size_t>(begin / kRowsAPiece)] = sums;
-  });
-  Norms sums{};
-  for (const Norms& some : partial) {
-    for (std::size_t v = 0; v < kV; ++v) sums[v] += some[v];
-  }
-  for (double& s : sums) s = std::sqrt(s) * 1.000001;
-  return sums;
-}
+constexpr Offset kFrontsAPiece = 256;  ///< for one thread
 
 class RelativeTest {
  public:
@@ -130,10 +108,10 @@ class RelativeTest {
     data_ = absolute_norm(matrix_, pool_);
     gamma_ = 1.01 * kUnit * (solver_.longest_path() + 16);
     m_norm_ = std::sqrt(root_growth());  // || |M| ||_2
-    Norms noise{};
+    ColumnSums noise{};
     for (int step = 1; step <= kMostPowerSteps; ++step) {
       if (!apply_error(g, noise, step == 1 ? &result : nullptr)) return result;
-      judge(result, g, step, column_norms(v_, pool_), noise);
+      judge(result, g, step, norms(v_), noise);
       // More steps pay only while what was measured, not what rounding may hide, is in the way.
       if (result.certified || !(result.transposed_part + result.residual_part < 0.25)) return result;
     }
@@ -178,7 +156,7 @@ class RelativeTest {
   /// v := w, Gaussian.
   void draw(std::uint64_t key) {
     const CounterRandom random(key);
-    for_ranges(pool_, v_.size(), kRowsAPiece * kV, [&](Offset begin, Offset end) {
+    for_ranges(pool_, v_.size(), kBlockRowsAPiece * kV, [&](Offset begin, Offset end) {
       for (Offset k = begin; k < end; k += 2) {
         std::tie(v_[k], v_[k + 1]) = random.gaussians(static_cast<std::uint64_t>(k / 2));
       }
@@ -195,22 +173,26 @@ class RelativeTest {
     });
   }
 
+  ColumnSums norms(const Block& block) const {
+    return column_norms(block.data(), Offset{factor_.rows}, pool_);
+  }
+
   static double* row(Block& block, Index position) { return block.data() + Offset{position} * kV; }
 
   /// v := F v. Adds the bounds 2 ||h|| + beta ||rho|| + rounding of v to `noise`. The first call (v = w,
   /// `first` not null) also settles beta, and the exclusion radius where one is asked. False when nothing
   /// follows.
-  bool apply_error(double g, Norms& noise, RelativeResult* first) {
-    for_ranges(pool_, v_.size(), kRowsAPiece * kV, [&](Offset begin, Offset end) {
+  bool apply_error(double g, ColumnSums& noise, RelativeResult* first) {
+    for_ranges(pool_, v_.size(), kBlockRowsAPiece * kV, [&](Offset begin, Offset end) {
       std::copy(v_.data() + begin, v_.data() + end, input_.data() + begin);
       std::copy(v_.data() + begin, v_.data() + end, y_.data() + begin);
     });
     transposed_solve(y_);
-    const Norms y_norm = column_norms(y_, pool_);
+    const ColumnSums y_norm = norms(y_);
     extended_times(matrix_, y_.data(), v_.data(), pool_);
-    const Norms b_norm = column_norms(v_, pool_);
+    const ColumnSums b_norm = norms(v_);
     solve(v_);
-    const Norms z_norm = column_norms(v_, pool_);
+    const ColumnSums z_norm = norms(v_);
     if (first != nullptr) {
       const double y_most = std::accumulate(y_norm.begin(), y_norm.end(), 0.0, larger);
       h_most_ = gamma_ * m_norm_ * y_most;
@@ -219,7 +201,7 @@ class RelativeTest {
       first->inverse_norm = beta_ * (1 + 1e-12);
     }
     subtract_signed(v_, input_);
-    const Norms v_norm = column_norms(v_, pool_);
+    const ColumnSums v_norm = norms(v_);
     const double product_error = data_.product_error();
     double transposed = 0, residual = 0;
     for (std::size_t i = 0; i < kV; ++i) {
@@ -240,11 +222,11 @@ class RelativeTest {
 
   /// b >= ||M^-1 B M^-T||, B the second matrix, from the y at hand: one product and one solve more. The
   /// input's place is free.
-  double bound_second(const Norms& y_norm, double g) {
+  double bound_second(const ColumnSums& y_norm, double g) {
     extended_times(*second_, y_.data(), input_.data(), pool_);
-    const Norms b_norm = column_norms(input_, pool_);
+    const ColumnSums b_norm = norms(input_);
     solve(input_);
-    const Norms u_norm = column_norms(input_, pool_);
+    const ColumnSums u_norm = norms(input_);
     const AbsoluteNorm size = absolute_norm(*second_, pool_);
     double most = 0;
     for (std::size_t i = 0; i < kV; ++i) {
@@ -306,7 +288,7 @@ class RelativeTest {
 
   /// After `steps` applications ||v|| + noise >= g ||F||^steps for some vector, as long as ||F|| <= 1; and if
   /// ||F|| were 1 or more, it would be at least g.
-  void judge(RelativeResult& result, double g, int steps, const Norms& v, const Norms& noise) {
+  void judge(RelativeResult& result, double g, int steps, const ColumnSums& v, const ColumnSums& noise) {
     double most = 0;
     for (std::size_t i = 0; i < kV; ++i) most = larger(most, (v[i] + noise[i]) / g);
     result.measured_part = *std::max_element(v.begin(), v.end()) / g;

@@ -1,12 +1,12 @@
 #include "spectrum/residual_intervals.hpp"
 
 #include <algorithm>
-#include <array>
 #include <cmath>
-#include <functional>
 #include <numeric>
 
+#include "base/ranges.hpp"
 #include "dense/symmetric_eigen.hpp"
+#include "numeric/block_columns.hpp"
 #include "numeric/extended_product.hpp"
 
 namespace stanchion {
@@ -14,44 +14,13 @@ namespace {
 
 constexpr auto kV = static_cast<std::size_t>(kBlockVectors);
 constexpr double kUnit = 0x1p-53;
-using Sums = std::array<double, kV>;
 
-constexpr Offset kPieces =
-    16;  ///< of the rows, each with sums of its own: the same for any number of threads
-
-/// `work(first, end)` on ranges of rows, over the threads.
-void for_rows(ThreadPool& pool, std::size_t rows,
-              const std::function<void(std::size_t, std::size_t, Offset)>& work) {
-  pool.run(kPieces, [&](Offset piece, int) {
-    const auto of = [&](Offset number) {
-      return rows * static_cast<std::size_t>(number) / static_cast<std::size_t>(kPieces);
-    };
-    if (of(piece) < of(piece + 1)) work(of(piece), of(piece + 1), piece);
-  });
+ColumnSums dots(ThreadPool& pool, const std::vector<double>& a, const std::vector<double>& b) {
+  return column_dots(a.data(), b.data(), static_cast<Offset>(a.size() / kV), pool);
 }
 
-/// Column by column sum of a_i b_i.
-Sums dots(ThreadPool& pool, const std::vector<double>& a, const std::vector<double>& b) {
-  std::array<Sums, kPieces> parts{};
-  for_rows(pool, a.size() / kV, [&](std::size_t first, std::size_t end, Offset piece) {
-    Sums sums{};
-    for (std::size_t i = first * kV; i < end * kV; i += kV) {
-      for (std::size_t v = 0; v < kV; ++v) sums[v] += a[i + v] * b[i + v];
-    }
-    parts[static_cast<std::size_t>(piece)] = sums;
-  });
-  Sums sums{};
-  for (const Sums& part : parts) {
-    for (std::size_t v = 0; v < kV; ++v) sums[v] += part[v];
-  }
-  return sums;
-}
-
-/// Norms rounded up: sums of squares of up to 2^31 terms.
-Sums norms(ThreadPool& pool, const std::vector<double>& block) {
-  Sums sums = dots(pool, block, block);
-  for (double& s : sums) s = std::sqrt(s) * 1.000001;
-  return sums;
+ColumnSums norms(ThreadPool& pool, const std::vector<double>& block) {
+  return column_norms(block.data(), static_cast<Offset>(block.size() / kV), pool);
 }
 
 std::vector<double> column_of(const std::vector<double>& block, std::size_t v) {
@@ -121,21 +90,22 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
   extended_times(base.matrix(), x.data(), bx.data(), base.pool());
   extended_times(second, x.data(), cx.data(), base.pool());
   ThreadPool& pool = base.pool();
-  const Sums energy = dots(pool, x, bx), work = dots(pool, x, cx);
+  const ColumnSums energy = dots(pool, x, bx), work = dots(pool, x, cx);
   const AbsoluteNorm base_size = absolute_norm(base.matrix(), pool),
                      second_size = absolute_norm(second, pool);
-  const Sums x_norm = norms(pool, x), b_norm = norms(pool, bx), c_norm = norms(pool, cx);
-  Sums theta{};
+  const ColumnSums x_norm = norms(pool, x), b_norm = norms(pool, bx), c_norm = norms(pool, cx);
+  ColumnSums theta{};
   for (std::size_t v = 0; v < kV; ++v) theta[v] = energy[v] > 0 ? work[v] / energy[v] : 0;
   std::vector<double> z(x.size());
-  for_rows(pool, z.size() / kV, [&](std::size_t first, std::size_t end, Offset) {
-    for (std::size_t i = first * kV; i < end * kV; i += kV) {
+  for_ranges(pool, static_cast<Offset>(z.size() / kV), kBlockRowsAPiece, [&](Offset begin, Offset end) {
+    for (std::size_t i = static_cast<std::size_t>(begin) * kV; i < static_cast<std::size_t>(end) * kV;
+         i += kV) {
       for (std::size_t v = 0; v < kV; ++v) z[i + v] = cx[i + v] - theta[v] * bx[i + v];
     }
   });
-  const Sums r_norm = norms(pool, z);
+  const ColumnSums r_norm = norms(pool, z);
   base.solve(z.data());
-  const Sums z_norm = norms(pool, z), y_norm = norms(pool, coordinates);
+  const ColumnSums z_norm = norms(pool, z), y_norm = norms(pool, coordinates);
   std::vector<ResidualPair> pairs(static_cast<std::size_t>(count));
   for (std::size_t v = 0; v < pairs.size(); ++v) {
     ResidualPair& pair = pairs[v];
