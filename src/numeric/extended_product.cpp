@@ -79,14 +79,14 @@ AbsoluteNorm absolute_norm(const ShiftedMatrix& matrix, ThreadPool& pool) {
   if (family.rows == 0) return {};
   const Buffer<double>& scales = *matrix.scale;
   struct Row {
-    double sum;
+    double sum, scaling;  ///< of the entries' sizes; of what the scale makes of 1 in their places
     Offset terms;
   };
   std::array<Buffer<Row>, kRanges> parts;
   const std::array<Index, kRanges + 1> ends = equal_ranges(family);
   pool.run(kRanges, [&](Offset range, int) {
     const auto r = static_cast<std::size_t>(range);
-    parts[r] = Buffer<Row>(family.rows, Row{0, 0});
+    parts[r] = Buffer<Row>(family.rows, Row{0, 0, 0});
     for (Index j = ends[r]; j < ends[r + 1]; ++j) {
       for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
         double size = 0;
@@ -94,23 +94,31 @@ AbsoluteNorm absolute_norm(const ShiftedMatrix& matrix, ThreadPool& pool) {
           size += std::fabs(matrix.coefficients[t] * family.values[t][k]);
         }
         const Index i = family.row[k];
-        size *= scales[i] * scales[j];
-        parts[r][i].sum += size;
-        ++parts[r][i].terms;
-        if (i == j) continue;
-        parts[r][j].sum += size;
-        ++parts[r][j].terms;
+        const double scaling = scales[i] * scales[j];
+        for (const Index row : {i, j}) {
+          parts[r][row].sum += size * scaling;
+          parts[r][row].scaling += scaling;
+          ++parts[r][row].terms;
+          if (i == j) break;
+        }
       }
     }
   });
-  AbsoluteNorm most{0, 0, static_cast<Index>(matrix.coefficients.size())};
+  AbsoluteNorm most{0, 0, static_cast<Index>(matrix.coefficients.size()), 0};
   for (Index i = 0; i < family.rows; ++i) {
-    double sum = std::fabs(matrix.offset);
+    double sum = std::fabs(matrix.offset), scaling = 0;
     Offset terms = 0;
-    for (const Buffer<Row>& part : parts) sum += part[i].sum, terms += part[i].terms;
+    for (const Buffer<Row>& part : parts) {
+      sum += part[i].sum;
+      scaling += part[i].scaling;
+      terms += part[i].terms;
+    }
     most.norm = std::max(most.norm, sum);
     most.longest_row = std::max(most.longest_row, terms);
+    most.underflow = std::max(most.underflow, scaling);
   }
+  // A product among subnormal numbers and its low part are each off by up to 2^-1075, before they are scaled.
+  most.underflow *= matrix.exact() ? 0 : 2.0 * most.members * 0x1p-1074;
   most.norm *= 1.001;
   return most;
 }

@@ -166,14 +166,17 @@ MatrixFamily permute(const MatrixFamily& family, const Buffer<Index>& position_o
 double ShiftedMatrix::entry_error(Offset k, Index row, Index column) const {
   constexpr double kUnit = 0x1p-53, kTiny = 0x1p-1074;
   if (exact()) return kTiny;
+  const double scaling = (*scale)[row] * (*scale)[column];
+  // Scaled before it is multiplied by gamma, which could make it vanish.
   double magnitude = 0;
   for (std::size_t t = 0; t < coefficients.size(); ++t) {
-    magnitude += std::fabs(coefficients[t] * family->values[t][k]);
+    magnitude += std::fabs(coefficients[t] * family->values[t][k]) * scaling;
   }
-  // One product and at most (members - 1) additions a term; the scale is a power of two.
-  const double gamma = static_cast<double>(coefficients.size() + 1) * kUnit;
-  return gamma * magnitude * ((*scale)[row] * (*scale)[column]) +
-         static_cast<double>(coefficients.size() + 1) * kTiny;
+  // One product and at most (members - 1) additions a term; the scale is a power of two. A product among
+  // subnormal numbers loses up to half of the least of them, and the scale may make that large; sums of such
+  // numbers are exact.
+  const auto roundings = static_cast<double>(coefficients.size() + 1);
+  return roundings * kUnit * magnitude + roundings * kTiny * (1 + scaling);
 }
 
 }  // namespace stanchion

@@ -71,6 +71,29 @@ TEST(HardCases, RetryingUntilItPassesDoesNotInflateTheRisk) {
   EXPECT_GT(fooled, 0) << "at this risk chance must get through now and then, or the test shows nothing";
 }
 
+TEST(HardCases, ProductsOfSubnormalNumbersDoNotTurnASign) {
+  // 0.4 times the least subnormal number rounds to zero, so that -1 + 3 * 0.4 of them is formed as -1: all of
+  // it is rounding, whatever the scale makes of it.
+  constexpr double kLeast = 0x1p-1074;
+  const SymmetricMatrix first = from_triplets(1, {{0, 0, -kLeast}}),
+                        more = from_triplets(1, {{0, 0, kLeast}});
+  auto prepared = prepare(first);
+  const std::vector<const SymmetricMatrix*> members{&first, &more, &more, &more};
+  prepared.family = unite(members);
+  const ShiftedMatrix matrix{&prepared.family, {1, 0.4, 0.4, 0.4}, &prepared.scale, 0};
+  for (const bool single : {false, true}) {
+    RiskBudget risk(1e-6);
+    CertifyOptions options;
+    options.risk = &risk;
+    options.most_factor_bytes = Offset{1} << 40;
+    options.single = single ? SingleUse::kOnly : SingleUse::kNever;
+    const auto found = certify_inertia(prepared.analysis, matrix, options, *prepared.pool);
+    ASSERT_TRUE(found.ok()) << found.status().to_string();
+    EXPECT_TRUE(allows(*found, 0, 1))
+        << "single " << single << ": " << found->inertia.negative << " negative";
+  }
+}
+
 TEST(HardCases, PenaltySpringsFromAHundredToATrillionAreSettledBeyondThatNothingWrongIsSaid) {
   for (int power = 2; power <= 18; ++power) {
     const double penalty = std::pow(10.0, power);
