@@ -50,8 +50,8 @@ class BatchCommand : public Command {
   Result<int> deliver(BatchSummary& summary);
   Status open_summaries();
 
-  std::optional<std::string> jobs_, results_, shard_, memory_cap_, store_, reports_, certificates_, logs_,
-      json_, junit_, log_, log_format_;
+  std::optional<std::string> jobs_, results_, shard_, memory_cap_, store_, store_size_, reports_,
+      certificates_, logs_, json_, junit_, log_, log_format_;
   std::vector<std::string> merge_;
   std::optional<std::int64_t> threads_, cpu_limit_;
   bool resume_ = false, retry_ = false, quiet_ = false;
@@ -87,6 +87,8 @@ void BatchCommand::declare(Arguments& arguments) {
                   "processor time that one job may take (604800, a week)");
   arguments.text("--analysis-store", store_, "DIR",
                  "keep elimination orders here for later runs (default: for this run only)");
+  arguments.text("--store-size", store_size_, "SIZE",
+                 "of the analysis store (20G); orders used least recently go first");
   arguments.closing(
       "A line is {\"id\": \"a1\", \"command\": \"count\", \"inputs\": {\"stiffness\": \"K.mtx\", "
       "\"geometric\": "
@@ -127,17 +129,24 @@ std::string BatchCommand::results_path(const Shard& part) const {
   return (path.parent_path() / (stem + which + ".results.jsonl")).string();
 }
 
+/// `target` becomes the size that was asked, if one was.
+Status take_size(const std::optional<std::string>& asked, const char* option, Offset& target) {
+  if (!asked) return {};
+  const auto bytes = parse_byte_size(*asked);
+  if (!bytes.ok()) {
+    return Status::bad_usage(bytes.status().code(), bytes.status().message(), option,
+                             bytes.status().remedy());
+  }
+  target = *bytes;
+  return {};
+}
+
 Result<BatchOptions> BatchCommand::batch_options() const {
   BatchOptions options;
   options.memory_cap = total_memory_bytes() / 10 * 8;
-  if (memory_cap_) {
-    const auto bytes = parse_byte_size(*memory_cap_);
-    if (!bytes.ok()) {
-      return Status::bad_usage(bytes.status().code(), bytes.status().message(), "--memory-cap",
-                               bytes.status().remedy());
-    }
-    options.memory_cap = *bytes;
-  }
+  if (Status status = take_size(memory_cap_, "--memory-cap", options.memory_cap); !status.ok()) return status;
+  if (Status status = take_size(store_size_, "--store-size", options.store_bytes); !status.ok())
+    return status;
   options.processors = available_processors();
   if (threads_) {
     if (*threads_ < 1 || *threads_ > 65536) {

@@ -5,7 +5,9 @@
 #include <sys/stat.h>
 #include <unistd.h>
 
+#include <algorithm>
 #include <cerrno>
+#include <chrono>
 #include <cstdint>
 #include <cstdio>
 #include <cstring>
@@ -21,6 +23,8 @@ namespace {
 
 constexpr std::string_view kMagic = "stanchion order 1\n";
 constexpr std::size_t kDigestBytes = 64;
+constexpr std::string_view kEnding = ".order";
+constexpr std::int64_t kAbandonedMs = 3'600'000;  // no order takes so long to write
 
 struct Header {
   char key[kDigestBytes];
@@ -56,6 +60,37 @@ std::optional<KnownOrder> order_of(std::string_view bytes, const std::string& ke
   KnownOrder order{Buffer<Index>(header.vertices), static_cast<Index>(header.dissected)};
   if (!entries.empty()) std::memcpy(order.vertex_at.data(), entries.data(), entries.size());
   return order;
+}
+
+bool is_key(const std::string& text) {
+  return text.size() == kDigestBytes && std::all_of(text.begin(), text.end(), [](char c) {
+           return (c >= '0' && c <= '9') || (c >= 'a' && c <= 'f');
+         });
+}
+
+/// Calls `visit(key, what follows in its name, path, facts)` for every file named as `path_of` names orders.
+template <class Visit>
+void visit_files(const std::string& folder, const Visit& visit) {
+  namespace fs = std::filesystem;
+  std::error_code failure, gone;
+  for (auto part = fs::directory_iterator(folder, failure); !failure && part != fs::directory_iterator();
+       part.increment(failure)) {
+    const std::string front = part->path().filename().string();
+    if (front.size() != 2) continue;
+    for (auto entry = fs::directory_iterator(part->path(), gone); !gone && entry != fs::directory_iterator();
+         entry.increment(gone)) {
+      const std::string name = entry->path().filename().string(), path = entry->path().string();
+      const std::string key = name.substr(0, kDigestBytes);
+      struct stat facts {};
+      if (!is_key(key) || key.compare(0, 2, front) != 0) continue;
+      if (::lstat(path.c_str(), &facts) != 0 || !S_ISREG(facts.st_mode)) continue;
+      visit(key, std::string_view(name).substr(kDigestBytes), path, facts);
+    }
+  }
+}
+
+std::int64_t milliseconds(const timespec& time) {
+  return std::int64_t{time.tv_sec} * 1000 + time.tv_nsec / 1'000'000;
 }
 
 }  // namespace
@@ -97,6 +132,41 @@ void AnalysisStore::keep(const std::string& key, const KnownOrder& order) {
 
 void AnalysisStore::give_up() {
   if (lock_ >= 0) ::close(std::exchange(lock_, -1));
+}
+
+std::vector<StoredOrder> stored_orders(const std::string& folder) {
+  std::vector<StoredOrder> found;
+  visit_files(folder, [&found](const std::string& key, std::string_view ending, const std::string& path,
+                               const struct stat& facts) {
+    if (ending == kEnding) found.push_back({key, path, facts.st_size, milliseconds(facts.st_mtim)});
+  });
+  std::sort(found.begin(), found.end(), [](const StoredOrder& a, const StoredOrder& b) {
+    return a.used_ms != b.used_ms ? a.used_ms > b.used_ms : a.key < b.key;
+  });
+  return found;
+}
+
+std::int64_t trim_orders(const std::string& folder, std::int64_t most_bytes) {
+  auto orders = stored_orders(folder);
+  std::int64_t bytes = 0, dropped = 0;
+  for (const StoredOrder& order : orders) bytes += order.bytes;
+  while (bytes > most_bytes && !orders.empty()) {
+    bytes -= orders.back().bytes;
+    if (::unlink(orders.back().path.c_str()) == 0) ++dropped;
+    orders.pop_back();
+  }
+  return dropped;
+}
+
+void drop_abandoned_orders(const std::string& folder) {
+  const auto now = std::chrono::system_clock::now().time_since_epoch();
+  const std::int64_t oldest =
+      std::chrono::duration_cast<std::chrono::milliseconds>(now).count() - kAbandonedMs;
+  visit_files(folder, [oldest](const std::string&, std::string_view ending, const std::string& path,
+                               const struct stat& facts) {
+    const bool half = ending.size() > kEnding.size() && ending.substr(0, kEnding.size()) == kEnding;
+    if (half && milliseconds(facts.st_mtim) < oldest) ::unlink(path.c_str());
+  });
 }
 
 }  // namespace stanchion

@@ -2,8 +2,10 @@
 // shared by processes that know nothing of each other.
 #pragma once
 
+#include <cstdint>
 #include <optional>
 #include <string>
+#include <vector>
 
 #include "order/known_orders.hpp"
 #include "stanchion/status.hpp"
@@ -36,5 +38,21 @@ class AnalysisStore : public KnownOrders {
   std::string folder_;
   int lock_ = -1;
 };
+
+struct StoredOrder {
+  std::string key, path;
+  std::int64_t bytes = 0, used_ms = 0;  ///< last use, milliseconds since 1970
+};
+
+/// The orders in `folder`, the most recently used first; files of other names are nobody's business.
+std::vector<StoredOrder> stored_orders(const std::string& folder);
+
+/// Drops orders, the least recently used first, until those left take `most_bytes` at most. Whoever reads an
+/// order meanwhile has it open; whoever comes later finds it anew. The number of orders dropped. Safe between
+/// threads and processes.
+std::int64_t trim_orders(const std::string& folder, std::int64_t most_bytes);
+
+/// Drops what processes that were killed have left half-written, if it is an hour old.
+void drop_abandoned_orders(const std::string& folder);
 
 }  // namespace stanchion

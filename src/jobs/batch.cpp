@@ -13,6 +13,7 @@
 #include <set>
 
 #include "base/clock.hpp"
+#include "jobs/analysis_store.hpp"
 #include "jobs/durable_file.hpp"
 #include "jobs/memory_need.hpp"
 #include "model/byte_size.hpp"
@@ -25,6 +26,7 @@ constexpr int kMostPasses = 16;  // so often may smaller jobs go before one that
 constexpr std::size_t kLookAhead = 64;
 constexpr int kMostAttempts = 6;
 constexpr int kWaitMilliseconds = 1000;  // an interruption ends the wait at once
+constexpr double kTrimSeconds = 10;      // so often the analysis store is looked after
 
 /// One job that is not recorded yet.
 struct Waiting {
@@ -75,6 +77,10 @@ class Batch {
       if (running_.empty()) continue;
       wait_for_news();
       if (Status status = collect(); !status.ok()) return status;
+      if (trimmed_.seconds() > kTrimSeconds) {
+        trim_orders(options_.analysis_store, options_.store_bytes);
+        trimmed_.restart();
+      }
     }
     tell();
     return {};
@@ -364,6 +370,7 @@ class Batch {
   std::list<Running> running_;
   std::map<std::string, Offset> need_of_model_;
   std::set<std::string> forecasting_;
+  Stopwatch trimmed_;
   Offset memory_in_use_ = 0;
   int threads_in_use_ = 0;
   std::size_t jobs_ = 0, done_ = 0;
@@ -397,8 +404,10 @@ Status run_batch(const std::vector<const ListedJob*>& jobs, const RequestRules& 
   BatchOptions options = given;
   if (options.analysis_store.empty()) options.analysis_store = options.work_folder + "/analyses";
   if (Status status = make_folders(options); !status.ok()) return status;
+  drop_abandoned_orders(options.analysis_store);
   Batch batch(rules, options, context, files, results, recorded);
   Status status = batch.run(jobs);
+  trim_orders(options.analysis_store, options.store_bytes);
   std::error_code failure;
   if (status.ok()) std::filesystem::remove_all(options.work_folder, failure);
   return status;

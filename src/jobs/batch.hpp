@@ -16,12 +16,13 @@ namespace stanchion {
 struct BatchOptions {
   std::string program = "/proc/self/exe";
   std::string work_folder;  ///< for what is under way and for the analysis store; made, and gone at the end
-  std::string analysis_store;  ///< empty: in the work folder
-  std::string reports;         ///< folder for a page a job, ID.html; empty: none
-  std::string certificates;    ///< folder for a certificate a job, ID.json, where the command makes one
-  std::string logs;            ///< folder for a log a job, ID.log; empty: none
-  Offset memory_cap = 0;       ///< of all jobs together
-  int processors = 1;          ///< threads of all jobs together
+  std::string analysis_store;             ///< empty: in the work folder
+  Offset store_bytes = Offset{20} << 30;  ///< that the analysis store may hold
+  std::string reports;                    ///< folder for a page a job, ID.html; empty: none
+  std::string certificates;  ///< folder for a certificate a job, ID.json, where the command makes one
+  std::string logs;          ///< folder for a log a job, ID.log; empty: none
+  Offset memory_cap = 0;     ///< of all jobs together
+  int processors = 1;        ///< threads of all jobs together
   std::optional<std::int64_t> cpu_seconds;  ///< of one job
 };
 

@@ -110,9 +110,9 @@ HttpResponse Api::delete_input(const Call& call) {
 HttpResponse Api::list_analyses(const Call&) {
   Json json = {{"analyses", Json::array()}};
   std::int64_t bytes = 0;
-  for (const StoredAnalysis& analysis : parts_.inputs.analyses()) {
+  for (const StoredOrder& analysis : parts_.inputs.analyses()) {
     json["analyses"].push_back(
-        {{"digest", analysis.digest}, {"bytes", analysis.bytes}, {"used", time_to_text(analysis.used_ms)}});
+        {{"digest", analysis.key}, {"bytes", analysis.bytes}, {"used", time_to_text(analysis.used_ms)}});
     bytes += analysis.bytes;
   }
   json["total"] = json["analyses"].size();

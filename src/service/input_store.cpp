@@ -45,6 +45,7 @@ InputStore::InputStore(std::string folder, std::int64_t most_bytes, JobJournal& 
     : folder_(std::move(folder)), most_bytes_(most_bytes), journal_(journal) {
   fs::create_directories(folder_ + "/inputs");
   fs::create_directories(folder_ + "/analyses");
+  drop_abandoned_orders(analysis_folder());
   for (const auto& entry : fs::directory_iterator(folder_ + "/inputs")) {
     // Half an upload, or a whole one of which the table was not told any more.
     const std::string digest = entry.path().filename().string();
@@ -144,27 +145,14 @@ Status InputStore::remove(const std::string& digest) {
   return {};
 }
 
-std::vector<StoredAnalysis> InputStore::analyses() const {
-  std::vector<StoredAnalysis> found;
-  std::error_code failure;
-  for (auto entry = fs::recursive_directory_iterator(analysis_folder(), failure);
-       !failure && entry != fs::recursive_directory_iterator(); entry.increment(failure)) {
-    struct stat facts {};
-    const std::string path = entry->path().string();
-    if (entry->path().extension() != ".order" || ::stat(path.c_str(), &facts) != 0) continue;
-    found.push_back({entry->path().stem().string(), path, facts.st_size,
-                     std::int64_t{facts.st_mtim.tv_sec} * 1000 + facts.st_mtim.tv_nsec / 1'000'000});
-  }
-  std::sort(found.begin(), found.end(), [](const StoredAnalysis& a, const StoredAnalysis& b) {
-    return a.used_ms != b.used_ms ? a.used_ms > b.used_ms : a.digest < b.digest;
-  });
-  return found;
+std::vector<StoredOrder> InputStore::analyses() const {
+  return stored_orders(analysis_folder());
 }
 
 std::int64_t InputStore::used_bytes() const {
   std::int64_t bytes = 0;
   if (!journal_.read([&](JobTable& table) { bytes = table.input_bytes(); }).ok()) return 0;
-  for (const StoredAnalysis& analysis : analyses()) bytes += analysis.bytes;
+  for (const StoredOrder& analysis : analyses()) bytes += analysis.bytes;
   return bytes;
 }
 

@@ -13,15 +13,11 @@
 
 #include "base/digest.hpp"
 #include "base/file_handle.hpp"
+#include "jobs/analysis_store.hpp"
 #include "service/job_journal.hpp"
 #include "stanchion/status.hpp"
 
 namespace stanchion::service {
-
-struct StoredAnalysis {
-  std::string digest, path;
-  std::int64_t bytes = 0, used_ms = 0;
-};
 
 struct UploadResult {
   InputRecord input;
@@ -72,7 +68,7 @@ class InputStore {
   void evict();
 
   std::string analysis_folder() const { return folder_ + "/analyses"; }
-  std::vector<StoredAnalysis> analyses() const;  ///< the most recently used first
+  std::vector<StoredOrder> analyses() const;  ///< the most recently used first
   std::int64_t used_bytes() const;
   std::int64_t most_bytes() const { return most_bytes_; }
   std::uint64_t evicted() const { return evicted_; }

@@ -3,6 +3,8 @@
 #include <sys/stat.h>
 
 #include <algorithm>
+#include <cstdlib>
+#include <filesystem>
 #include <fstream>
 #include <sstream>
 
@@ -21,6 +23,25 @@ Scope scope_named(const std::string& name) {
 bool is_token(const std::string& text) {
   return text.size() >= 24 && text.size() <= 200 &&
          std::all_of(text.begin(), text.end(), [](char c) { return c > ' ' && c < 0x7f; });
+}
+
+/// Whether systemd has put the file there as a credential of this service, in a folder that is the service's
+/// alone (systemd.exec(5)). What stands there for the group is then the mask of an access list that names the
+/// service's user.
+bool is_credential(const std::string& path) {
+  const char* folder = std::getenv("CREDENTIALS_DIRECTORY");
+  if (folder == nullptr || *folder == '\0') return false;
+  std::error_code failure;
+  const auto real = std::filesystem::canonical(path, failure);
+  if (failure) return false;
+  const auto credentials = std::filesystem::canonical(folder, failure);
+  return !failure && real.parent_path() == credentials;
+}
+
+/// Whether nobody but its owner may read or write it.
+bool is_private(const std::string& path, mode_t mode) {
+  const mode_t others = mode & (S_IRWXG | S_IRWXO);
+  return others == 0 || (others == S_IRGRP && is_credential(path));
 }
 
 }  // namespace
@@ -46,7 +67,7 @@ Result<Tokens> Tokens::load(const std::string& path) {
     return Status::bad_usage("bad-token-file", "the token file cannot be read", path,
                              "name a file of tokens");
   }
-  if ((facts.st_mode & (S_IRWXG | S_IRWXO)) != 0) {
+  if (!is_private(path, facts.st_mode)) {
     return Status::bad_usage("open-token-file", "others than its owner may read or write the token file",
                              path, "chmod 600 " + path);
   }

@@ -20,7 +20,8 @@ class Tokens {
  public:
   /// One token a line, "SCOPE TOKEN" with scope read, submit or admin; # begins a comment. A token has 24 to
   /// 200 visible characters. Bad usage: "bad-token-file" (with file and line; never with a token),
-  /// "open-token-file" when others than the owner may read or write it.
+  /// "open-token-file" when others than the owner may read or write it. A credential of systemd
+  /// (in $CREDENTIALS_DIRECTORY) may show the group as a reader.
   static Result<Tokens> load(const std::string& path);
 
   /// The scope of what an Authorization field says ("Bearer TOKEN"); kNone for an unknown token. The time

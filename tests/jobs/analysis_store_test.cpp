@@ -1,10 +1,12 @@
 #include "jobs/analysis_store.hpp"
 
+#include <fcntl.h>
 #include <gtest/gtest.h>
 #include <sys/stat.h>
 
 #include <atomic>
 #include <chrono>
+#include <filesystem>
 #include <thread>
 
 #include "base/digest.hpp"
@@ -89,6 +91,57 @@ TEST(AnalysisStore, WithoutAWritableFolderEveryRunFindsItsOwn) {
   EXPECT_FALSE(store.find(kKey));
   store.keep(kKey, order_of({0}));
   EXPECT_FALSE(store.find(kKey));
+}
+
+/// Sets when `path` was used last.
+void use(const std::string& path, int seconds_ago) {
+  const timespec when{::time(nullptr) - seconds_ago, 0};
+  const timespec both[2] = {when, when};
+  ASSERT_EQ(::utimensat(AT_FDCWD, path.c_str(), both, 0), 0);
+}
+
+TEST(AnalysisStore, WhatWasUsedLeastRecentlyMakesRoom) {
+  const TestFolder folder;
+  AnalysisStore store(folder.path());
+  const std::string first = sha256("first"), second = sha256("second"), third = sha256("third");
+  int ago = 300;
+  for (const std::string& key : {first, second, third}) {
+    (void)store.find(key);
+    store.keep(key, order_of({2, 0, 1}));
+    use(store.path_of(key), ago -= 60);
+  }
+  const auto stored = stored_orders(folder.path());
+  ASSERT_EQ(stored.size(), 3U);
+  EXPECT_EQ(stored.front().key, third);
+  const std::int64_t each = stored.front().bytes;
+  EXPECT_EQ(trim_orders(folder.path(), 3 * each), 0);
+  EXPECT_TRUE(store.find(first));  // and so it is the newest
+  EXPECT_EQ(trim_orders(folder.path(), 3 * each - 1), 1);
+  EXPECT_FALSE(store.find(second));
+  store.give_up();
+  EXPECT_TRUE(store.find(first) && store.find(third));
+  EXPECT_EQ(trim_orders(folder.path(), each / 2), 2);
+  EXPECT_TRUE(stored_orders(folder.path()).empty());
+}
+
+TEST(AnalysisStore, RoomIsMadeOfOrdersAndLeftoversOnly) {
+  const TestFolder folder;
+  AnalysisStore store(folder.path());
+  (void)store.find(kKey);
+  store.keep(kKey, order_of({0}));
+  const std::string old_half = store.path_of(kKey) + ".aBcDeF", new_half = store.path_of(kKey) + ".GhIjKl";
+  const std::string notes = folder.write("notes.order", "somebody's own"),
+                    beside = store.path_of(kKey).substr(0, folder.path().size() + 4) + "mine.order";
+  for (const std::string& path : {old_half, new_half, beside}) write_plainly(path, "x");
+  use(old_half, 7200);
+  use(new_half, 60);
+  use(beside, 7200);
+  drop_abandoned_orders(folder.path());
+  EXPECT_FALSE(std::filesystem::exists(old_half));
+  EXPECT_EQ(trim_orders(folder.path(), 0), 1);
+  for (const std::string& path : {new_half, notes, beside})
+    EXPECT_TRUE(std::filesystem::exists(path)) << path;
+  EXPECT_EQ(trim_orders(folder / "none", 0), 0);
 }
 
 /// Returns whatever it is told to.

@@ -103,6 +103,33 @@ class BatchTest(ProgramTest):
         self.assertEqual(sorted(reused), [False, True, True])
         self.assertEqual(len(list((self.folder / "store").glob("*/*.order"))), 1)
 
+    def test_orders_used_least_recently_make_room(self):
+        sizes = range(40, 70, 10)
+        for rows in sizes:
+            self.matrix(f"{rows}.mtx", rows, chain(rows))
+
+        def reused(name, code, *rows):
+            self.write_jobs([self.job(f"r{number}", stiffness=f"{number}.mtx") for number in rows])
+            self.batch(code, "--analysis-store", "store", "--results", name, *room)
+            found = self.read_results(self.folder / name)
+            return [found[f"r{number}"]["outcome"]["work"]["analysis_reused"] for number in rows]
+
+        def orders():
+            return list((self.folder / "store").glob("*/*.order"))
+
+        room = ()
+        self.assertEqual(reused("1", 0, *sizes), [False] * 3)
+        for path in orders():
+            os.utime(path, (1, 1))
+        self.assertEqual(reused("2", 0, 50), [True])
+        room = ("--store-size", str(max(path.stat().st_size for path in orders())))
+        self.assertEqual(reused("3", 0, 50), [True])
+        self.assertEqual(len(orders()), 1)
+        room = ()
+        self.assertEqual(reused("4", 0, *sizes), [False, True, False])
+        self.write_jobs([self.job("a")])
+        self.expect_failure(2, "bad-size", "batch", "jobs.jsonl", "--store-size", "much")
+
     def test_bad_lines_are_refused_before_anything_runs(self):
         lines = [json.dumps(self.job("a")), "{", json.dumps(self.job("a")), "", json.dumps(self.job("b", "solve")),
                  json.dumps(self.job("c") | {"extra": 1}), json.dumps(self.job("d", at=[1])),

@@ -1,5 +1,10 @@
 // Tokens, origins, rates, addresses.
 #include <gtest/gtest.h>
+#include <sys/stat.h>
+
+#include <cstdlib>
+#include <filesystem>
+#include <fstream>
 
 #include "service/http_server.hpp"
 #include "service/origin.hpp"
@@ -47,6 +52,38 @@ TEST(Access, ExposureHasItsConditions) {
   EXPECT_EQ(check_exposure(options).code(), "contradiction");
   options.tls_key = "k";
   EXPECT_TRUE(check_exposure(options).ok());
+}
+
+TEST(Access, TokensAreTheOwnersAloneOrACredential) {
+  namespace fs = std::filesystem;
+  std::string name = (fs::temp_directory_path() / "stanchion_tokens_XXXXXX").string();
+  ASSERT_NE(::mkdtemp(name.data()), nullptr);
+  const fs::path folder = name, file = folder / "own" / "tokens", beside = folder / "tokens";
+  fs::create_directory(folder / "own");
+  for (const fs::path& path : {file, beside}) std::ofstream(path) << "admin " << std::string(32, 'a') << "\n";
+  const auto code_with = [](const fs::path& path, mode_t mode) {
+    EXPECT_EQ(::chmod(path.c_str(), mode), 0);
+    const auto tokens = Tokens::load(path.string());
+    if (!tokens.ok()) return tokens.status().code();
+    EXPECT_EQ(tokens->scope_of("Bearer " + std::string(32, 'a')), Scope::kAdmin);
+    return std::string();
+  };
+  ::unsetenv("CREDENTIALS_DIRECTORY");
+  EXPECT_EQ(code_with(file, 0600), "");
+  EXPECT_EQ(code_with(file, 0400), "");
+  for (const mode_t mode : {0440, 0404, 0420, 0640, 0604, 0660, 0777})
+    EXPECT_EQ(code_with(file, mode), "open-token-file");
+  // systemd: 0400 where the file system has no access lists, 0440 where it has.
+  ASSERT_EQ(::setenv("CREDENTIALS_DIRECTORY", (folder / "own").c_str(), 1), 0);
+  EXPECT_EQ(code_with(file, 0400), "");
+  EXPECT_EQ(code_with(file, 0440), "");
+  for (const mode_t mode : {0404, 0444, 0460, 0450}) EXPECT_EQ(code_with(file, mode), "open-token-file");
+  EXPECT_EQ(code_with(beside, 0440), "open-token-file");
+  // A link in the folder to a file elsewhere is no credential.
+  fs::create_symlink(beside, folder / "own" / "link");
+  EXPECT_EQ(Tokens::load((folder / "own" / "link").string()).status().code(), "open-token-file");
+  ASSERT_EQ(::unsetenv("CREDENTIALS_DIRECTORY"), 0);
+  fs::remove_all(folder);
 }
 
 TEST(Access, RateRefills) {

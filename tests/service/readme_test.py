@@ -46,7 +46,12 @@ class ReadmeTest(ServiceTest):
     def test_every_line_of_the_readme(self):
         text = (SOURCE / "README.md").read_text(encoding="utf-8")
         section = text.split("\n## As a service\n")[1].split("\n## ")[0]
-        start, block = re.findall(r"```\n(.*?)```", section, re.DOTALL)
+        start, block, unit = re.findall(r"```\n(.*?)```", section, re.DOTALL)
+        proposed = (SOURCE / "data/systemd/stanchion.service").read_text(encoding="utf-8")
+        typed = re.findall(r"# ([A-Z]\w+=.+)", unit)
+        self.assertEqual(len(typed), 2)
+        for line in typed:
+            self.assertIn("#" + line + "\n", proposed)
         self.assertEqual(start, "stanchion serve --root models=/srv/models\n")
         service = self.serve()
         submit, ask, result, events, upload = commands_of(block)
