@@ -38,7 +38,8 @@ def ours(program, folder, pencil, many, threads):
 
 
 def theirs(method, folder, pencil, many, end, threads):
-    command = [sys.executable, PEER, method, folder / "K.mtx", folder / SECOND[pencil], pencil, many, repr(end), threads]
+    files = [(folder / name).with_suffix(".npz") for name in ("K.mtx", SECOND[pencil])]
+    command = [sys.executable, PEER, method, *files, pencil, many, repr(end), threads]
     run = subprocess.run([*map(str, command)], capture_output=True, text=True, check=False)
     if run.returncode != 0:
         return {"failed": run.stderr.strip().splitlines()[-1] if run.stderr.strip() else f"exit {run.returncode}"}
@@ -52,11 +53,25 @@ def worst_difference(values, reference):
     return max(abs(a / b - 1) for a, b in zip(sorted(values), sorted(reference)))
 
 
+def prepare(program, folder, specimen, unknowns, pencil):
+    """The model's files, and copies that SciPy reads in a second."""
+    if not (folder / "K.mtx").exists():
+        folder.mkdir(parents=True, exist_ok=True)
+        subprocess.run([program, "specimen", specimen, "--unknowns", str(unknowns), "--out", str(folder)],
+                       check=True, stdout=subprocess.DEVNULL)
+    for name in ("K.mtx", SECOND[pencil]):
+        fast = (folder / name).with_suffix(".npz")
+        if not fast.exists():
+            subprocess.run([program, "convert", str(folder / name), str(fast)], check=True, stdout=subprocess.DEVNULL)
+
+
 def main():
     parser = argparse.ArgumentParser(prog="scripts/bench spectrum", description=__doc__)
     parser.add_argument("--program", required=True, help=argparse.SUPPRESS)
     parser.add_argument("--out", required=True, help=argparse.SUPPRESS)
     parser.add_argument("--models", default="plate_50k,frame_20k,solid_30k", help="of " + ",".join(MODELS))
+    parser.add_argument("--prepare", action="store_true", help="only make the models")
+    parser.add_argument("--peers", default="arpack,slepc", help="of arpack,slepc")
     parser.add_argument("--many", type=int, default=20, help="values asked (20)")
     parser.add_argument("--repeat", type=int, default=3)
     parser.add_argument("--threads", type=int, default=2)
@@ -64,19 +79,19 @@ def main():
     out = pathlib.Path(options.out)
     lines = ["| model | who | seconds (median) | ratio ours / theirs | factorizations | clusters | widest bracket | agrees to |",
              "|---|---|---|---|---|---|---|---|"]
+    peers = options.peers.split(",")
     results = {}
     for name in options.models.split(","):
         specimen, unknowns, pencil = MODELS[name]
         folder = out / name
-        if not (folder / "K.mtx").exists():
-            folder.mkdir(parents=True, exist_ok=True)
-            subprocess.run([options.program, "specimen", specimen, "--unknowns", str(unknowns), "--out", str(folder)],
-                           check=True, stdout=subprocess.DEVNULL)
-        runs = {"ours": [], "arpack": [], "slepc": []}
+        prepare(options.program, folder, specimen, unknowns, pencil)
+        if options.prepare:
+            continue
+        runs = {"ours": [], **{method: [] for method in peers}}
         for _ in range(options.repeat):
             mine = ours(options.program, folder, pencil, options.many, options.threads)
             runs["ours"].append(mine)
-            for method in ("arpack", "slepc"):
+            for method in peers:
                 if runs[method] and "failed" in runs[method][-1]:
                     continue
                 runs[method].append(theirs(method, folder, pencil, options.many, mine["end"], options.threads))
@@ -85,7 +100,7 @@ def main():
         mine = runs["ours"][-1]
         lines.append(f"| {name} | stanchion, {mine['level']} | {median:.2f} | | {mine['factorizations']} | {mine['clusters']} "
                      f"| {mine['widest']:.1e} | |")
-        for method in ("arpack", "slepc"):
+        for method in peers:
             if "failed" in runs[method][-1]:
                 lines.append(f"| {name} | {method} | failed: {runs[method][-1]['failed'][:60]} | | | | | |")
                 continue
@@ -93,7 +108,9 @@ def main():
             difference = worst_difference(runs[method][-1]["values"], mine["values"])
             agrees = f"{difference:.0e}" if difference is not None else f"only {len(runs[method][-1]['values'])} found"
             lines.append(f"| {name} | {method} | {theirs_median:.2f} | {median / theirs_median:.2f} | | | none | {agrees} |")
-        print("\n".join(lines[-3:]), flush=True)
+        print("\n".join(lines[-1 - len(peers):]), flush=True)
+    if options.prepare:
+        return
     (out / "spectrum.json").write_text(json.dumps(results, indent=1), encoding="utf-8")
     (out / "spectrum.md").write_text("\n".join(lines) + "\n", encoding="utf-8")
     print(f"written: {out / 'spectrum.json'} and {out / 'spectrum.md'}")

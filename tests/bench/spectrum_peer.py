@@ -5,14 +5,13 @@ import json
 import sys
 import time
 
-import scipy.io
 import scipy.sparse
 import scipy.sparse.linalg
 
 
 def read(path):
-    """Both triangles of a symmetric Matrix Market file."""
-    return scipy.sparse.csc_matrix(scipy.io.mmread(path))
+    """Both triangles."""
+    return scipy.sparse.csc_matrix(scipy.sparse.load_npz(path))
 
 
 def arpack(stiffness, second, pencil, many, _end):
