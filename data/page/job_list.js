@@ -47,7 +47,7 @@ export class JobList {
     this.grid.addEventListener("focus", () => { this.focused = true; this.soon(); });
     this.grid.addEventListener("blur", () => { this.focused = false; this.soon(); });
     this.tally = el("p", { class: "soft tally", role: "status" });
-    this.element = el("div", { class: "job-list" }, this.filter_form(), this.tally, this.grid);
+    this.element = el("div", { class: "job-list" }, el("h1", { class: "unseen" }, "Jobs"), this.filter_form(), this.tally, this.grid);
     this.rows = new Map();
     new ResizeObserver(() => this.soon()).observe(this.grid);
     book.listen(() => this.soon());

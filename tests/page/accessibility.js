@@ -69,7 +69,7 @@
   // Headings, in their order.
   const headings = all.filter((one) => /^H[1-6]$/.test(one.tagName));
   const ones = headings.filter((one) => one.tagName === "H1");
-  if (!dialog && ones.length !== 1 && document.body.dataset.where !== "list") faults.push(`${ones.length} headings of the first level`);
+  if (!dialog && ones.length !== 1) faults.push(`${ones.length} headings of the first level`);
   for (let k = 1; k < headings.length; k += 1) {
     if (Number(headings[k].tagName[1]) > Number(headings[k - 1].tagName[1]) + 1) faults.push(`a level is skipped before ${short(headings[k])}`);
   }

@@ -1,109 +1,19 @@
-"""The page in a headless Chromium, end to end against the real service: what a person does, by mouse and by keyboard,
-and what a person sees. Skipped, with the reason, where there is no Chromium."""
+"""The page in a headless Chromium, end to end against the real service: what a person does, by mouse and by keyboard.
+Skipped, with the reason, where there is no Chromium."""
 
-import json
-import os
 import pathlib
 import re
-import shutil
-import subprocess
-import sys
 import tempfile
 import threading
 import time
-import unittest
 import urllib.request
 
-import browser
 import real_service
 import stand_in
-
-PROGRAM = os.environ["STANCHION_PROGRAM"]
-SOURCE = pathlib.Path(os.environ["STANCHION_SOURCE"])
-LOOK = (pathlib.Path(__file__).parent / "accessibility.js").read_text(encoding="utf-8")
-SKIPPED = 77
+from page_case import LOOK, PROGRAM, SOURCE, PageCase, main, quoted
 
 
-def quoted(text):
-    return json.dumps(text)
-
-
-def make_roots(folder):
-    """A root with the shipped footbridge, and a frame whose part hangs loose."""
-    root = folder / "models"
-    shutil.copytree(SOURCE / "data/demo", root / "footbridge")
-    subprocess.run([PROGRAM, "specimen", "frame", "--unknowns", "900", "--fault", "loose-part", "--out", str(root / "frame"), "--quiet"], check=True)
-    (root / "footbridge/list.csv").write_text("value\n1.6164418908\n1.6185006117\n1.680585488\n", encoding="ascii")
-    return root
-
-
-class PageTest(unittest.TestCase):
-    @classmethod
-    def setUpClass(cls):
-        cls.folder = tempfile.TemporaryDirectory(prefix="page_test_")
-        cls.root = make_roots(pathlib.Path(cls.folder.name))
-        cls.service = real_service.RealService(PROGRAM, SOURCE, cls.root, pathlib.Path(cls.folder.name) / "store")
-        cls.service.start()
-        cls.browser = browser.Browser(browser.find_chromium())
-
-    @classmethod
-    def tearDownClass(cls):
-        cls.browser.close()
-        cls.service.stop()
-        cls.folder.cleanup()
-
-    def setUp(self):
-        self.browser.events.clear()
-        self.browser.size(1280, 900)
-        self.browser.open(self.service.address + "/")
-        self.browser.wait("document.querySelector('#connection').dataset.state === 'live'", what="live events")
-
-    def tearDown(self):
-        self.assertEqual([text for text in self.browser.complaints() if not re.search(self.may_fail, text)], [])
-        asked = [event["params"]["request"]["url"] for event in self.browser.events if event["method"] == "Network.requestWillBeSent"]
-        self.assertEqual([url for url in asked if not url.startswith((self.service.address, "http://127.0.0.1:", "blob:", "data:"))], [], "nothing is asked of anybody else")
-
-    may_fail = r"^$"
-
-    # What stands in the service, from outside of the browser.
-
-    def api(self, path, body=None):
-        request = urllib.request.Request(self.service.address + path, data=None if body is None else json.dumps(body).encode(),
-                                         headers={} if body is None else {"Content-Type": "application/json"})
-        with urllib.request.urlopen(request, timeout=60) as answer:
-            return json.load(answer)
-
-    def ask(self, command, inputs, options, **more):
-        return self.api("/v1/jobs", {"command": command, "inputs": inputs, "options": options, **more})["id"]
-
-    def finished(self, job):
-        for _ in range(1200):
-            record = self.api(f"/v1/jobs/{job}")
-            if record["state"] not in ("queued", "running"):
-                return record
-            time.sleep(0.05)
-        raise AssertionError(f"{job} does not end")
-
-    def result(self, job):
-        self.assertEqual(self.finished(job)["state"], "done")
-        return self.api(f"/v1/jobs/{job}/result")
-
-    def footbridge(self, **more):
-        return {"stiffness": "models/footbridge/K.mtx", "dofs": "models/footbridge/dofs.csv", **more}
-
-    def pencil(self):
-        return self.footbridge(geometric="models/footbridge/G.mtx")
-
-    def frame(self):
-        return {"stiffness": "models/frame/K.mtx", "dofs": "models/frame/dofs.csv", "nodes": "models/frame/nodes.csv"}
-
-    def open_job(self, job):
-        self.browser.run(f"location.hash = {quoted(f'#/job/{job}')}")
-        self.browser.wait(f"document.querySelector('#detail .band, #detail .problem') && document.querySelector('#detail').innerText.includes({quoted(job)})", 60, f"the view of {job}")
-
-    def text(self, selector):
-        return self.browser.run(f"document.querySelector({quoted(selector)}).innerText")
-
+class PageTest(PageCase):
     def test_a_question_by_browsing_the_roots(self):
         page = self.browser
         page.click("nav a[href='#/new']")
@@ -239,9 +149,6 @@ class PageTest(unittest.TestCase):
           let painted = 0, orange = 0, sum = 0;
           for (let k = 0; k < d.length; k += 4) { if (d[k + 3] > 40) painted += 1; if (d[k + 3] > 120 && d[k] > 170 && d[k + 2] < 90) orange += 1; sum = (sum * 31 + d[k] + d[k + 3]) % 1000000007; }
           return [painted, orange, sum]; })()""")
-
-    def settle(self):
-        self.browser.run("new Promise((go) => requestAnimationFrame(() => requestAnimationFrame(go)))")
 
     def test_causes_and_the_model(self):
         page = self.browser
@@ -419,97 +326,6 @@ class PageTest(unittest.TestCase):
             server.shutdown()
             server.server_close()
 
-    def everywhere(self):
-        """Every kind of view, by name: the address, and what to wait for."""
-        jobs = {"check": self.ask("check", self.footbridge(), {}), "sweep": self.ask("sweep", self.pencil(), {"from": 0.5, "to": 3, "points": 6}),
-                "bracket": self.ask("bracket", self.pencil(), {"first": 4}), "causes": self.ask("locate", self.frame(), {}),
-                "accuracy": self.ask("locate", self.footbridge(nodes="models/footbridge/nodes.csv"), {}),
-                "audit": self.ask("audit", self.pencil() | {"values": "models/footbridge/list.csv"}, {}), "forecast": self.ask("forecast", self.footbridge(), {}),
-                "failed": self.ask("check", {"stiffness": "models/footbridge/README.md"}, {})}
-        for job in jobs.values():
-            self.finished(job)
-        places = {name: (f"#/job/{job}", f"document.querySelector('#detail').innerText.includes({quoted(job)})") for name, job in jobs.items()}
-        return places | {"list": ("#/", "document.querySelector('.welcome')"), "new": ("#/new", "document.querySelector('form.ask')")}
-
-    def test_nothing_bars_the_way(self):
-        page = self.browser
-        pictures = os.environ.get("STANCHION_PICTURES")
-        places = self.everywhere()
-        for width, height in ((360, 740), (1280, 900), (2560, 1440)):
-            for scheme in ("light", "dark"):
-                page.size(width, height, scheme)
-                for name, (address, there) in places.items():
-                    page.run(f"location.hash = {quoted(address)}")
-                    page.wait(there, 30)
-                    if name in ("causes", "accuracy"):
-                        page.wait("document.querySelector('.scene')", 30)
-                    if pictures:
-                        self.settle()
-                        page.picture(pathlib.Path(pictures) / f"{name}_{width}_{scheme}.png", whole=name != "list")
-                    page.run("document.querySelectorAll('#detail details').forEach((one) => { one.open = true; })")
-                    self.settle()
-                    with self.subTest(name, width=width, scheme=scheme):
-                        self.assertEqual(page.run(LOOK), [])
-                        if scheme == "light":
-                            self.every_control_has_a_name()
-
-    def every_control_has_a_name(self):
-        controls = {"button", "link", "textbox", "searchbox", "combobox", "checkbox", "radio", "slider", "application", "grid", "progressbar", "dialog", "DisclosureTriangle"}
-        nameless = []
-        for node in self.browser.call("Accessibility.getFullAXTree")["nodes"]:
-            if not node.get("ignored") and node["role"]["value"] in controls and not node.get("name", {}).get("value", "").strip():
-                nameless.append(node["role"]["value"])
-        self.assertEqual(nameless, [])
-
-    def test_the_look_finds_what_is_planted(self):
-        page = self.browser
-        page.run("location.hash = '#/new'")
-        page.wait("document.querySelector('form.ask')")
-        self.assertEqual(page.run(LOOK), [])
-        for planted, word in (("<p class=x>pale</p>", "contrast"), ("<button>.</button>", "target"), ("<h4>too deep</h4>", "level is skipped"), ("<input type=text>", "no label"),
-                              ("<div class=x>wide</div>", "pixels in a window"), ("<p id=connection>twice</p>", "id used twice"), ("<table><tr><td>1</td></tr></table>", "no caption")):
-            with self.subTest(word):
-                page.run(f"""(() => {{ const box = document.createElement('div'); box.id = 'planted'; box.innerHTML = {quoted(planted)};
-                  document.querySelector('#detail').append(box); const one = box.firstChild;
-                  if ({quoted(word)} === 'contrast') {{ one.style.color = '#c8c8c8'; one.style.background = '#fff'; }}
-                  if ({quoted(word)} === 'target') {{ one.style.minHeight = one.style.minWidth = one.style.padding = '0'; one.style.height = one.style.width = '12px'; }}
-                  if ({quoted(word)} === 'pixels in a window') one.style.width = '3000px'; }})()""")
-                faults = page.run(LOOK)
-                page.run("document.querySelector('#planted').remove()")
-                self.assertTrue(any(word in fault for fault in faults), faults)
-
-    def test_tab_goes_through_everything_and_out_again(self):
-        page = self.browser
-        job = self.ask("sweep", self.pencil(), {"from": 0.5, "to": 3, "points": 6})
-        self.finished(job)
-        for address in (f"#/job/{job}", "#/new"):
-            page.run(f"location.hash = {quoted(address)}")
-            page.wait("document.querySelector('#detail .band, form.ask')", 30)
-            self.settle()
-            page.run("document.activeElement.blur(); window.scrollTo(0, 0)")
-            wanted = set(page.run("""(() => { let k = 0; return [...document.querySelectorAll('a[href], button, input, select, textarea, summary, [tabindex="0"]')]
-              .filter((one) => one.checkVisibility() && !one.disabled && one.tabIndex >= 0 && !(one.type === 'radio' && !one.checked) && !one.closest('details:not([open]) > :not(summary)'))
-              .map((one) => one.dataset.stop = String(k++)); })()"""))
-            met = []
-            for _ in range(len(wanted) + 8):
-                page.key("Tab")
-                met.append(page.run("document.activeElement.dataset.stop ?? ''"))
-                self.assertTrue(page.run("document.activeElement === document.body || getComputedStyle(document.activeElement).outlineStyle !== 'none' || document.activeElement.matches('.job-grid')"), "focus is seen")
-            with self.subTest(address):
-                self.assertEqual(wanted - set(met), set(), "not reached")
-                self.assertNotIn(True, [met[k] == met[k + 1] != "" for k in range(len(met) - 1)], "a trap")
-        # The first stop leads past the list.
-        page.run("document.activeElement.blur(); window.scrollTo(0, 0)")
-        page.call("Page.reload")
-        page.wait("document.querySelector('form.ask')", 30)
-        self.settle()
-        page.run("document.querySelector('#skip').focus()")
-        page.key("Enter")
-        self.assertEqual(page.run("document.activeElement.tagName"), "H1")
-
 
 if __name__ == "__main__":
-    if browser.find_chromium() is None:
-        print("skipped: there is no chromium on this machine")
-        sys.exit(SKIPPED)
-    unittest.main()
+    main()
