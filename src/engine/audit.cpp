@@ -96,7 +96,7 @@ class Audit {
   /// Lists of one sign are judged from 0 or from everything, for what is missed below the first value matters
   /// most.
   void choose_range(double low, double high) {
-    const bool factors = request_.pencil == Pencil::kGeometric;
+    const bool factors = request_.pencil == Pencil::kGeometric || counter_.two_sided();
     const auto beyond = [](double end, int direction) { return end + direction * kBeyond * std::fabs(end); };
     const double lowest = counter_.kind() == CountKind::kAbove ? counter_.origin() : -INFINITY;
     from_ = factors ? (low > 0 ? 0 : beyond(low, -1)) : lowest;
@@ -129,9 +129,18 @@ class Audit {
     for (const FoundValues& values : found.values)
       certain.push_back({values.low, values.high, values.count, {}});
     answer_.range = *found.complete;
+    for (const FoundValues& values : found.values) rest_on(values.level);
     answer_.proof = "residual intervals of all values, and counts at the ends of the range";
     report(compare_spans(clusters_, certain, from_, to_), &found);
     return true;
+  }
+
+  /// The verdict rests on all that is known inside the range, not on the counts at its ends alone: when any
+  /// of it may fail, so may the verdict, with no more than the document has spent so far.
+  void rest_on(Level level) {
+    if (level != Level::kStatistical) return;
+    answer_.range.level = Level::kStatistical;
+    answer_.range.failure_probability = outcome_.risk;
   }
 
   /// Every gap of the list is counted in: two counts at the ends would let a missing and a surplus value
@@ -163,7 +172,8 @@ class Audit {
     }
     if (!known_.contradictions().empty())
       return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
-    if (answer_.range.level == Level::kStatistical) answer_.range.failure_probability = outcome_.risk;
+    rest_on(answer_.range.level);
+    for (const CountFact& fact : known_.facts()) rest_on(fact.level);
     report(*stretches, nullptr);
     return {};
   }

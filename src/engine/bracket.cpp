@@ -1,21 +1,15 @@
 #include <algorithm>
 #include <cmath>
-#include <cstdio>
 
 #include "base/clock.hpp"
 #include "engine/bracket_counts.hpp"
 #include "engine/bracket_residual.hpp"
 #include "engine/other_side.hpp"
+#include "io/shortest.hpp"
 #include "model/frequency.hpp"
 
 namespace stanchion {
 namespace {
-
-std::string number(double value) {
-  char text[32];
-  std::snprintf(text, sizeof(text), "%.10g", value);
-  return text;
-}
 
 class Bracketer {
  public:
@@ -104,7 +98,7 @@ class Bracketer {
     }
     answer_.none_below = true;
     answer_.sentences.push_back(
-        "K + f G is positive definite at every f in [" + number(-reach) + ", " + number(reach) +
+        "K + f G is positive definite at every f in [" + number_text(-reach) + ", " + number_text(reach) +
         "], because it is at the ends (convexity): no critical factor lies there, of either sign.");
     return true;
   }
@@ -117,10 +111,11 @@ class Bracketer {
   }
 
   void say_safety(const ValueRange& range) {
-    if (counter_.constrained()) return;
+    if (counter_.constrained() || request_.pencil != Pencil::kGeometric) return;
     if (answer_.none_below == true && counter_.two_sided() && *range.low <= 0 && *range.high >= 0) {
-      answer_.sentences.push_back("K + f G is positive definite at every f in [" + number(*range.low) + ", " +
-                                  number(*range.high) + "], because it is at the ends (convexity).");
+      answer_.sentences.push_back("K + f G is positive definite at every f in [" + number_text(*range.low) +
+                                  ", " + number_text(*range.high) +
+                                  "], because it is at the ends (convexity).");
     }
   }
 
@@ -226,13 +221,14 @@ class Bracketer {
 
   void say_number_found(Index fewer) {
     if (fewer == 0) return;
-    counter_.warn("fewer-than-asked",
-                  std::to_string(fewer) + " of the values asked do not exist in the range that was searched" +
-                      (answer_.complete ? ", up to " + number(std::max(std::fabs(answer_.complete->to),
-                                                                       std::isfinite(answer_.complete->from)
-                                                                           ? std::fabs(answer_.complete->from)
-                                                                           : 0.0))
-                                        : ""));
+    counter_.warn(
+        "fewer-than-asked",
+        std::to_string(fewer) + " of the values asked do not exist in the range that was searched" +
+            (answer_.complete ? ", up to " + number_text(std::max(std::fabs(answer_.complete->to),
+                                                                  std::isfinite(answer_.complete->from)
+                                                                      ? std::fabs(answer_.complete->from)
+                                                                      : 0.0))
+                              : ""));
   }
 
   /// K is not definite (said already): the inertia at the ends is all there is.
@@ -242,8 +238,8 @@ class Bracketer {
       auto count = counter_.count(*end);
       if (!count.ok()) return count.status();
       if (!count->below) continue;
-      answer_.sentences.push_back("At " + number(*end) + " there are " + std::to_string(*count->below) + " " +
-                                  count->meaning + "; no number of values follows from that.");
+      answer_.sentences.push_back("At " + number_text(*end) + " there are " + std::to_string(*count->below) +
+                                  " " + count->meaning + "; no number of values follows from that.");
     }
     return {};
   }

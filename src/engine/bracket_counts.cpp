@@ -18,7 +18,8 @@ class Bisection {
     if (counter.kind() != CountKind::kBelow) staircase_.add(counter.fact_at_origin());
   }
 
-  Result<FoundRange> run(const ValueRange& range, std::optional<Index> first, bool negative) {
+  Result<FoundRange> run(const ValueRange& asked, std::optional<Index> first, bool negative) {
+    const ValueRange range = first ? asked : countable(counter_, asked);
     auto numbers = first ? first_numbers(*first, negative) : numbers_in(range);
     if (!numbers.ok()) return numbers.status();
     FoundRange found;

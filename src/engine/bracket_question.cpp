@@ -8,6 +8,11 @@ void within_document(std::optional<double>& failure_probability, const Outcome& 
   if (failure_probability) *failure_probability = std::min(*failure_probability, outcome.risk);
 }
 
+ValueRange countable(const PencilCounter& counter, const ValueRange& range) {
+  if (!counter.two_sided() || range.low) return range;
+  return {std::min(0.0, *range.high), std::max(0.0, *range.high)};
+}
+
 CountedRange counted_range(const std::optional<CountFact>& low, const CountFact& high, double from,
                            double to) {
   CountedRange range{from, to, std::nullopt, Level::kProved, std::nullopt};

@@ -33,6 +33,10 @@ struct FoundRange {
   std::optional<CountedRange> complete;
 };
 
+/// The range that counts can speak of: where they are of the values between 0 and a shift, whatever the
+/// pencil, a range without a lower end begins or ends at 0. `counter` is judged; the range has an upper end.
+ValueRange countable(const PencilCounter& counter, const ValueRange& range);
+
 /// A counted range from two facts; level and failure probability of both.
 CountedRange counted_range(const std::optional<CountFact>& low, const CountFact& high, double from,
                            double to);

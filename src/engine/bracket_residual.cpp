@@ -185,7 +185,7 @@ class ResidualBrackets {
   // --------------------------------------------------------------------------------------------------
 
   Result<bool> bracket_range() {
-    const ValueRange& range = question_.range;
+    const ValueRange range = countable(counter_, question_.range);
     std::optional<CountFact> low, high;
     if (counter_.two_sided()) {
       // K is definite: n(0) = 0, and 0 itself is never a value.

@@ -1,18 +1,10 @@
 #include "engine/other_side.hpp"
 
 #include <algorithm>
-#include <cstdio>
+
+#include "io/shortest.hpp"
 
 namespace stanchion {
-namespace {
-
-std::string number(double value) {
-  char text[32];
-  std::snprintf(text, sizeof(text), "%.10g", value);
-  return text;
-}
-
-}  // namespace
 
 Result<std::optional<ShiftCount>> look_at_the_other_side(PencilCounter& counter, double lowest,
                                                          double highest, Outcome& outcome,
@@ -29,7 +21,8 @@ Result<std::optional<ShiftCount>> look_at_the_other_side(PencilCounter& counter,
 }
 
 void say_other_side(const ShiftCount& other, Outcome& outcome, std::vector<std::string>& sentences) {
-  const std::string span = other.shift < 0 ? number(other.shift) + " and 0" : "0 and " + number(other.shift);
+  const std::string span =
+      other.shift < 0 ? number_text(other.shift) + " and 0" : "0 and " + number_text(other.shift);
   if (other.below == 0) {
     sentences.push_back("On the other side, between " + span + ", there is no critical factor.");
     return;
@@ -55,7 +48,7 @@ std::optional<std::string> convexity_sentence(const std::vector<ShiftCount>& cou
   }
   if (low == high) return std::nullopt;
   return std::string(constrained ? "On its constraints " : "") +
-         "K + f G is positive definite at every f in [" + number(low) + ", " + number(high) +
+         "K + f G is positive definite at every f in [" + number_text(low) + ", " + number_text(high) +
          "], because it is at the ends (convexity).";
 }
 

@@ -52,6 +52,29 @@ class AuditTest(ProgramTest):
         document = self.audit(0, FIRST, "--digits", 12, "--tolerance", "1e-11")
         self.assertTrue(any("could not be shown" in sentence for sentence in document["sentences"]), document["sentences"])
 
+    def test_with_an_indefinite_mass_lists_begin_at_0(self):
+        # K = I and M diagonal: the values are the reciprocals of the masses, two of them negative.
+        stiffness = self.matrix("K2.mtx", 5, diagonal([1] * 5))
+        mass = self.matrix("M2.mtx", 5, diagonal([-4, -2, 1, 2, 8]))
+        ask = ("audit", stiffness, "--mass", mass, "--values")
+        for method in ((), ("--digits", 15)):
+            for values, counted in (([0.125, 0.5, 1.0], 3), ([-0.5, -0.25], 2), ([-0.5, -0.25, 0.125], 3)):
+                document = self.expect(0, *ask, self.list(values), *method)
+                self.assertEqual((document["verdict"], document["range"]["counted"]), ("complete", counted))
+            self.assertEqual(self.expect(1, *ask, self.list([-0.5]), *method)["verdict"], "missing")
+
+    def test_a_verdict_that_rests_on_a_test_is_not_called_proved(self):
+        # The ends of the tolerances lie so near the values that proofs leave their counts open.
+        stiffness = self.matrix("K3.mtx", 4, {(0, 0): 1.0, (1, 1): 2.0, (2, 2): 3.0, (3, 2): 1.0})
+        mass = self.matrix("M3.mtx", 4, diagonal([1, 1, 1, 0]))
+        multipliers = self.folder / "multipliers.txt"
+        multipliers.write_text("4\n", encoding="ascii")
+        for tolerance, level in (("1e-9", "proved"), ("1e-14", "statistical")):
+            document = self.expect(0, "audit", stiffness, "--mass", mass, "--multipliers", multipliers,
+                                   "--values", self.list([1.0, 2.0]), "--tolerance", tolerance)
+            self.assertEqual((document["verdict"], document["range"]["level"]), ("complete", level))
+            self.assertEqual(document["range"]["failure_probability"], document["risk"] if level == "statistical" else None)
+
     def test_one_missing(self):
         for method in ((), ("--digits", 12)):
             document = self.audit(1, FIRST[:5] + FIRST[6:], "--find-missing", *method)

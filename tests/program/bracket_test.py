@@ -53,6 +53,19 @@ class BracketTest(ProgramTest):
             self.assertLessEqual(before["high"], after["low"])
         return total
 
+    def test_values_below_where_the_mass_is_indefinite_are_those_between_0_and_the_end(self):
+        # K = I and M diagonal: the values are the reciprocals of the masses, two of them negative.
+        masses = [-4.0, -2.0, 1.0, 2.0, 8.0]
+        stiffness = self.matrix("K2.mtx", 5, diagonal([1] * 5))
+        mass = self.matrix("M2.mtx", 5, diagonal(masses))
+        for method in ("residual", "counts"):
+            for end, values in ((0.75, [0.125, 0.5]), (-0.2, []), (-0.3, [-0.25]), (-0.6, [-0.5, -0.25])):
+                document = self.bracket(0, stiffness, "--mass", mass, f"--below={end}", "--method", method)
+                self.assertEqual(self.hold(document, values), len(values))
+                complete = document["complete"]
+                self.assertEqual((complete["from"], complete["to"]), (min(end, 0), max(end, 0)), method)
+                self.assertIn("mass-not-definite", [warning["code"] for warning in document["warnings"]])
+
     def test_the_first_factors_by_both_methods(self):
         for method in ("residual", "counts"):
             document = self.bracket(0, self.stiffness, "--geometric", self.geometric, "--first", 5, "--method", method)
