@@ -60,11 +60,11 @@ double half_unit_of(int digits) {
   return 0.5 * std::pow(10.0, 1 - digits) * 1.001;
 }
 
-/// A job of some seconds: the arithmetic is tried before it, for some tens of milliseconds.
 /// Entries a row, in the lower triangle, from which single precision is tried unasked: elements that fill a
 /// volume have some 36. Frames and shells have 4 to 23 and are conditioned so that its bound seldom closes: a
 /// frame of 100,000 lost 0.4 of the time of its count to the attempt.
 constexpr Offset kEntriesOfVolumes = 30;
+/// A job of some seconds: the arithmetic is tried before it, for some tens of milliseconds.
 constexpr double kLongJobFlops = 5e10;
 
 std::string mebibytes(Offset bytes) {
