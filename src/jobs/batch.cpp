@@ -14,6 +14,7 @@
 
 #include "base/clock.hpp"
 #include "jobs/analysis_store.hpp"
+#include "jobs/digest_lanes.hpp"
 #include "jobs/durable_file.hpp"
 #include "jobs/memory_need.hpp"
 #include "model/byte_size.hpp"
@@ -24,6 +25,7 @@ namespace {
 
 constexpr int kMostPasses = 16;  // so often may smaller jobs go before one that waits for memory
 constexpr std::size_t kLookAhead = 64;
+constexpr std::size_t kReadAhead = 1024;  // of so many jobs digests are asked for at a time
 constexpr int kMostAttempts = 6;
 constexpr int kWaitMilliseconds = 1000;  // an interruption ends the wait at once
 constexpr double kTrimSeconds = 10;      // so often the analysis store is looked after
@@ -31,6 +33,7 @@ constexpr double kTrimSeconds = 10;      // so often the analysis store is looke
 /// One job that is not recorded yet.
 struct Waiting {
   const ListedJob* job = nullptr;
+  bool asked = false;  ///< its digest is being worked out
   std::optional<std::string> digest;
   std::string model;           ///< digest of what the forecast depends on
   std::optional<Offset> need;  ///< absent: a forecast has to say it
@@ -56,6 +59,13 @@ std::optional<std::string> option_of(const JobRequest& request, const std::strin
   return std::nullopt;
 }
 
+/// A result that can be recorded once it is certain that the inputs are what they were.
+struct Unconfirmed {
+  const ListedJob* job = nullptr;
+  JobResult result;  ///< with the digest that the inputs had
+  std::string outcome;
+};
+
 class Batch {
  public:
   Batch(const RequestRules& rules, const BatchOptions& options, const BatchContext& context,
@@ -65,17 +75,19 @@ class Batch {
         context_(context),
         files_(files),
         results_(results),
-        recorded_(recorded) {}
+        recorded_(recorded),
+        lanes_(files, rules) {}
 
   Status run(const std::vector<const ListedJob*>& jobs) {
-    for (const ListedJob* job : jobs) queue_.push_back({job, {}, {}, {}, 0, 0, 0, 0});
+    for (const ListedJob* job : jobs) queue_.push_back({job, false, {}, {}, {}, 0, 0, 0, 0});
     jobs_ = jobs.size();
-    while (!queue_.empty() || !running_.empty()) {
+    while (!queue_.empty() || !running_.empty() || !unconfirmed_.empty()) {
       if (context_.cancel != nullptr && context_.cancel->cancelled()) return stop();
       if (Status status = start_what_fits(); !status.ok()) return status;
       tell();
-      if (running_.empty()) continue;
+      if (running_.empty() && asked_ == 0) continue;
       wait_for_news();
+      if (Status status = take_digests(); !status.ok()) return status;
       if (Status status = collect(); !status.ok()) return status;
       if (trimmed_.seconds() > kTrimSeconds) {
         trim_orders(options_.analysis_store, options_.store_bytes);
@@ -87,27 +99,50 @@ class Batch {
   }
 
  private:
-  /// The digest and what is known of the need; a job whose inputs cannot be read is recorded here and gone.
-  Result<bool> prepare(Waiting& waiting) {
-    if (waiting.digest) return true;
-    const JobRequest& request = waiting.job->request;
-    const auto digest = digest_of(request, files_);
-    if (!digest.ok()) {
-      const Status& failure = digest.status();
-      JobResult result = result_of(waiting);
-      result.exit_code = exit_code(failure.kind());
-      result.reason = failure.message();
-      result.failure =
-          ChildFailure{"bad_input", failure.code(), failure.message(), failure.place(), failure.remedy()};
-      if (Status status = record(result, ""); !status.ok()) return status;
-      return false;
+  void ask_for(Waiting& waiting) {
+    if (std::exchange(waiting.asked, true)) return;
+    lanes_.ask(waiting.job);
+    ++asked_;
+  }
+
+  /// Of jobs that wait, and of those that only wait to be recorded.
+  Status take_digests() {
+    for (const JobDigests& found : lanes_.answers()) {
+      --asked_;
+      const auto is_it = [&found](const auto& entry) { return entry.job == found.job; };
+      const auto ended = std::find_if(unconfirmed_.begin(), unconfirmed_.end(), is_it);
+      Status status;
+      if (ended != unconfirmed_.end()) {
+        status = confirm(*ended, found.digest);
+        unconfirmed_.erase(ended);
+      } else if (auto waiting = std::find_if(queue_.begin(), queue_.end(), is_it); waiting != queue_.end()) {
+        if (found.digest.ok()) {
+          prepare(*waiting, found);
+        } else {
+          status = record_unreadable(*waiting, found.digest.status());
+          queue_.erase(waiting);
+        }
+      }
+      if (!status.ok()) return status;
     }
-    waiting.digest = *digest;
-    JobRequest model = forecast_request(request, rules_);
-    const auto of_model = digest_of(model, files_);
-    waiting.model = of_model.ok()
-                        ? *of_model + (request.command == "bracket" || request.command == "audit" ? "b" : "")
-                        : *digest;
+    return {};
+  }
+
+  Status record_unreadable(const Waiting& waiting, const Status& failure) {
+    JobResult result = result_of(waiting);
+    result.exit_code = exit_code(failure.kind());
+    result.reason = failure.message();
+    result.failure =
+        ChildFailure{"bad_input", failure.code(), failure.message(), failure.place(), failure.remedy()};
+    return record(result, "");
+  }
+
+  void prepare(Waiting& waiting, const JobDigests& found) {
+    waiting.asked = false;
+    waiting.digest = *found.digest;
+    waiting.model = found.model;
+    if (waiting.need) return;
+    const JobRequest& request = waiting.job->request;
     const Offset bytes = input_bytes(request);
     const auto known = need_of_model_.find(waiting.model);
     if (known != need_of_model_.end()) {
@@ -115,18 +150,18 @@ class Batch {
     } else if (bytes <= kSmallInputBytes || request.command == "forecast") {
       waiting.need = need_from_size(bytes);
     }
-    return true;
   }
 
   Status start_what_fits() {
-    std::size_t looked_at = 0;
-    for (auto waiting = queue_.begin(); waiting != queue_.end() && looked_at < kLookAhead; ++looked_at) {
-      const auto ready = prepare(*waiting);
-      if (!ready.ok()) return ready.status();
-      if (!*ready) {
-        waiting = queue_.erase(waiting);
+    std::size_t looked_at = 0, reading = 0;
+    for (auto waiting = queue_.begin(); waiting != queue_.end() && looked_at < kLookAhead;) {
+      if (!waiting->digest || waiting->asked) {
+        if (++reading > kReadAhead) return {};
+        ask_for(*waiting);
+        ++waiting;
         continue;
       }
+      ++looked_at;
       const bool forecasts = !waiting->need;
       // One forecast a model: its other jobs wait for it.
       if (forecasts && forecasting_.count(waiting->model) != 0) {
@@ -135,6 +170,12 @@ class Batch {
       }
       if (!fits(*waiting)) {
         if (++waiting->passed_by > kMostPasses) return {};  // nothing may go before it any more
+        ++waiting;
+        continue;
+      }
+      // An input that has changed since is read again.
+      if (!digest_is_known(waiting->job->request, files_)) {
+        ask_for(*waiting);
         ++waiting;
         continue;
       }
@@ -214,7 +255,7 @@ class Batch {
   }
 
   void wait_for_news() {
-    std::vector<pollfd> handles;
+    std::vector<pollfd> handles{{lanes_.handle(), POLLIN, 0}};
     for (const Running& run : running_) {
       handles.push_back({run.child.end_handle(), POLLIN, 0});
       if (run.child.progress_handle() >= 0) handles.push_back({run.child.progress_handle(), POLLIN, 0});
@@ -284,30 +325,40 @@ class Batch {
     result.failure = end.failure;
     result.peak_bytes = end.peak_bytes;
     std::string outcome = read_whole(ended.answer).value_or("");
-    check_answer(waiting, end, outcome, result);
-    return record(result, outcome);
+    check_answer(end, outcome, result);
+    Unconfirmed answer{waiting.job, std::move(result), std::move(outcome)};
+    if (digest_is_known(waiting.job->request, files_)) {
+      return confirm(answer, digest_of(waiting.job->request, files_));
+    }
+    unconfirmed_.push_back(std::move(answer));
+    lanes_.ask(waiting.job);
+    ++asked_;
+    return {};
   }
 
-  /// An answer has to be there, and its inputs may not have changed since the digest was taken.
-  void check_answer(const Waiting& waiting, const ChildEnd& end, std::string& outcome, JobResult& result) {
-    const auto fail = [&result](int code, const std::string& reason) {
-      result.exit_code = code;
-      result.reason = reason;
-      result.failure.reset();
-    };
+  static void fail(JobResult& result, int code, const std::string& reason) {
+    result.exit_code = code;
+    result.reason = reason;
+    result.failure.reset();
+  }
+
+  /// An answer has to be there.
+  static void check_answer(const ChildEnd& end, std::string& outcome, JobResult& result) {
     const bool answered = end.kind == ChildEndKind::kExited && end.exit_code != kExitUsage &&
                           end.exit_code != kExitResource && end.exit_code != kExitInternal;
-    if (answered && !nlohmann::json::accept(outcome)) {
-      outcome.clear();
-      fail(kExitInternal, "the child ended well but left no answer");
-      return;
-    }
-    if (!outcome.empty() && !nlohmann::json::accept(outcome)) outcome.clear();
-    const auto digest = digest_of(waiting.job->request, files_);
-    if (digest.ok() && *digest == *waiting.digest) return;
+    if (nlohmann::json::accept(outcome)) return;
     outcome.clear();
-    fail(kExitUsage, "an input changed while the job ran");
-    result.digest.reset();
+    if (answered) fail(result, kExitInternal, "the child ended well but left no answer");
+  }
+
+  /// Records it, unless its inputs have changed since their digest was taken.
+  Status confirm(Unconfirmed& answer, const Result<std::string>& digest) {
+    if (!digest.ok() || digest.value() != answer.result.digest) {
+      answer.outcome.clear();
+      fail(answer.result, kExitUsage, "an input changed while the job ran");
+      answer.result.digest.reset();
+    }
+    return record(answer.result, answer.outcome);
   }
 
   JobResult result_of(const Waiting& waiting) const {
@@ -345,6 +396,7 @@ class Batch {
       ::unlink(run.answer.c_str());
     }
     running_.clear();
+    unconfirmed_.clear();
     return Status::interrupted();
   }
 
@@ -368,13 +420,15 @@ class Batch {
   std::vector<JobResult>& recorded_;
   std::deque<Waiting> queue_;
   std::list<Running> running_;
+  std::list<Unconfirmed> unconfirmed_;
   std::map<std::string, Offset> need_of_model_;
   std::set<std::string> forecasting_;
   Stopwatch trimmed_;
   Offset memory_in_use_ = 0;
   int threads_in_use_ = 0;
-  std::size_t jobs_ = 0, done_ = 0;
+  std::size_t jobs_ = 0, done_ = 0, asked_ = 0;
   std::uint64_t started_ = 0;
+  DigestLanes lanes_;
 };
 
 /// Makes the folders; what an earlier run left half-done in the work folder goes.

@@ -5,6 +5,7 @@
 #include <sys/stat.h>
 #include <unistd.h>
 
+#include <algorithm>
 #include <cerrno>
 #include <cstring>
 #include <vector>
@@ -43,10 +44,11 @@ long long nanoseconds(const struct timespec& time) {
   return static_cast<long long>(time.tv_sec) * 1'000'000'000 + time.tv_nsec;
 }
 
-Result<std::string> read_digest(int file, const std::string& path) {
+Result<std::string> read_digest(int file, const std::string& path, const CancellationToken* stop) {
   std::vector<char> block(std::size_t{1} << 20);
   Sha256 digest;
   for (;;) {
+    if (stop != nullptr && stop->cancelled()) return Status::interrupted();
     const ssize_t count = ::read(file, block.data(), block.size());
     if (count == 0) return digest.finish();
     if (count > 0) {
@@ -59,7 +61,24 @@ Result<std::string> read_digest(int file, const std::string& path) {
 
 }  // namespace
 
-Result<std::string> FileDigests::of(const std::string& path) {
+FileDigests::Stamp FileDigests::stamp_of(const struct stat& about) {
+  return {about.st_dev, about.st_ino, static_cast<unsigned long long>(about.st_size),
+          nanoseconds(about.st_ctim), nanoseconds(about.st_mtim)};
+}
+
+std::optional<std::string> FileDigests::find(const std::string& path, const Stamp& stamp) {
+  const std::lock_guard lock(mutex_);
+  const auto found = known_.find(path);
+  if (found == known_.end() || found->second.stamp != stamp) return std::nullopt;
+  return found->second.sha256;
+}
+
+bool FileDigests::knows(const std::string& path) {
+  struct stat about {};
+  return ::stat(path.c_str(), &about) == 0 && find(path, stamp_of(about));
+}
+
+Result<std::string> FileDigests::of(const std::string& path, const CancellationToken* stop) {
   const OpenFile file(path);
   if (file.handle() < 0) return cannot_read(path, errno);
   struct stat about {};
@@ -67,21 +86,21 @@ Result<std::string> FileDigests::of(const std::string& path) {
   if (!S_ISREG(about.st_mode)) {
     return Status::bad_input("not-a-file", "this is no regular file", path, "name a file");
   }
-  const Stamp stamp{about.st_dev, about.st_ino, static_cast<unsigned long long>(about.st_size),
-                    nanoseconds(about.st_ctim), nanoseconds(about.st_mtim)};
-  {
-    const std::lock_guard lock(mutex_);
-    const auto found = known_.find(path);
-    if (found != known_.end() && found->second.stamp == stamp) return found->second.sha256;
-  }
-  auto digest = read_digest(file.handle(), path);
+  const Stamp stamp = stamp_of(about);
+  if (auto known = find(path, stamp)) return *known;
+  auto digest = read_digest(file.handle(), path, stop);
   if (!digest.ok()) return digest;
   const std::lock_guard lock(mutex_);
   known_[path] = {stamp, *digest};
   return digest;
 }
 
-Result<std::string> digest_of(const JobRequest& request, FileDigests& files) {
+bool digest_is_known(const JobRequest& request, FileDigests& files) {
+  return std::all_of(request.inputs.begin(), request.inputs.end(),
+                     [&files](const JobInput& input) { return files.knows(input.path); });
+}
+
+Result<std::string> digest_of(const JobRequest& request, FileDigests& files, const CancellationToken* stop) {
   // Every text goes in with its length, so that no two jobs can spell the same bytes.
   Sha256 digest;
   const auto add = [&digest](const std::string& text) {
@@ -92,7 +111,7 @@ Result<std::string> digest_of(const JobRequest& request, FileDigests& files) {
   add(program_version());
   add(request.command);
   for (const JobInput& input : request.inputs) {
-    const auto content = files.of(input.path);
+    const auto content = files.of(input.path, stop);
     if (!content.ok()) return content.status();
     add(input.key);
     add(*content);

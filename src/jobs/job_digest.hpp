@@ -2,10 +2,14 @@
 // not names of files and not their times.
 #pragma once
 
+#include <sys/stat.h>
+
 #include <map>
 #include <mutex>
+#include <optional>
 #include <string>
 
+#include "base/cancellation.hpp"
 #include "jobs/job_request.hpp"
 
 namespace stanchion {
@@ -13,8 +17,12 @@ namespace stanchion {
 /// Digests of files, each read once as long as it stays as it is (device, inode, size, times). Thread safe.
 class FileDigests {
  public:
-  /// SHA-256 of the bytes as they lie on disk. Bad input "file-not-found", "not-a-file", "cannot-read".
-  Result<std::string> of(const std::string& path);
+  /// SHA-256 of the bytes as they lie on disk. Bad input "file-not-found", "not-a-file", "cannot-read";
+  /// Interrupted when `stop` fires.
+  Result<std::string> of(const std::string& path, const CancellationToken* stop = nullptr);
+
+  /// Whether the file was read before and is as it was then.
+  bool knows(const std::string& path);
 
  private:
   struct Stamp {
@@ -27,12 +35,19 @@ class FileDigests {
     std::string sha256;
   };
 
+  static Stamp stamp_of(const struct stat& about);
+  std::optional<std::string> find(const std::string& path, const Stamp& stamp);
+
   std::mutex mutex_;
   std::map<std::string, Known> known_;
 };
 
 /// 64 hexadecimal digits. The order of keys in the request does not matter, nor does "threads": answers have
 /// the same bits for every number of threads. Errors: those of FileDigests::of, at the input's path.
-Result<std::string> digest_of(const JobRequest& request, FileDigests& files);
+Result<std::string> digest_of(const JobRequest& request, FileDigests& files,
+                              const CancellationToken* stop = nullptr);
+
+/// Whether digest_of would find it without reading: every input is known, and as it was.
+bool digest_is_known(const JobRequest& request, FileDigests& files);
 
 }  // namespace stanchion

@@ -3,9 +3,13 @@
 
 #include <gtest/gtest.h>
 #include <sys/stat.h>
+#include <unistd.h>
 
 #include <algorithm>
+#include <chrono>
+#include <thread>
 
+#include "base/clock.hpp"
 #include "jobs/durable_file.hpp"
 #include "jobs/folder.hpp"
 
@@ -20,6 +24,48 @@ RequestRules rules() {
   forecast = check;
   forecast.name = "forecast";
   return {{check, forecast}, {}};
+}
+
+/// What came of jobs that a shell script works on.
+struct Worked {
+  Status status;
+  std::vector<JobResult> recorded;
+  std::vector<std::string> log;  ///< "id: words"
+};
+
+Worked work(const TestFolder& folder, const std::string& script, const std::string& jobs,
+            const CancellationToken* cancel = nullptr) {
+  const std::string program = folder.write("program", "#!/bin/sh\ncd '" + folder.path() + "'\n" + script);
+  EXPECT_EQ(::chmod(program.c_str(), 0755), 0);
+  const auto listed = read_job_list(jobs, "jobs", folder.path(), rules());
+  EXPECT_TRUE(listed.ok()) << listed.status().message();
+  std::vector<const ListedJob*> pointers;
+  for (const ListedJob& job : *listed) pointers.push_back(&job);
+  auto results = ResultFile::open(folder / "results.jsonl");
+  EXPECT_TRUE(results.ok());
+  BatchOptions options;
+  options.program = program;
+  options.work_folder = folder / "work";
+  options.memory_cap = Offset{1} << 36;
+  Worked worked;
+  BatchContext context;
+  context.cancel = cancel;
+  context.log = [&worked](const std::string& id, const std::string& text) {
+    worked.log.push_back(id + ": " + text);
+  };
+  FileDigests files;
+  worked.status = run_batch(pointers, rules(), options, context, files, *results, worked.recorded);
+  return worked;
+}
+
+std::string check_of(const std::string& id, const std::string& file) {
+  return R"({"id": ")" + id + R"(", "command": "check", "inputs": {"stiffness": ")" + file + "\"}}\n";
+}
+
+/// A file of many zeros that take no room.
+void make_large(const std::string& path, Offset bytes) {
+  std::ofstream(path).close();
+  ASSERT_EQ(::truncate(path.c_str(), bytes), 0);
 }
 
 struct Tried {
@@ -53,6 +99,74 @@ Tried tried(const std::string& script, Offset memory_cap) {
 }
 
 constexpr Offset kGibi = Offset{1} << 30;
+/// Answers whatever was asked.
+const std::string kAnswer =
+    "for word; do case $word in --json=*) echo '{}' > \"${word#--json=}\";; esac; done\n";
+
+TEST(Batch, ALargeInputThatIsReadHoldsUpNoOtherJob) {
+  const TestFolder folder;
+  make_large(folder / "large.mtx", kGibi / 2);
+  folder.write("K.mtx", "some bytes");
+  const Worked worked = work(folder, kAnswer, check_of("large", "large.mtx") + check_of("small", "K.mtx"));
+  EXPECT_TRUE(worked.status.ok());
+  ASSERT_EQ(worked.recorded.size(), 2U);
+  EXPECT_EQ(worked.recorded[0].id, "small");
+  const auto of = [&worked](const std::string& front) {
+    return std::find_if(worked.log.begin(), worked.log.end(),
+                        [&front](const std::string& line) { return line.rfind(front, 0) == 0; });
+  };
+  EXPECT_LT(of("small: recorded"), of("large: ")) << "the small one has ended before the large one begins";
+  EXPECT_NE(of("large: recorded, exit code 0"), worked.log.end());
+}
+
+TEST(Batch, AnInterruptionDoesNotWaitForALargeInput) {
+  const TestFolder folder;
+  make_large(folder / "large.mtx", 1024 * kGibi);
+  CancellationToken cancel;
+  std::thread other([&cancel] {
+    std::this_thread::sleep_for(std::chrono::milliseconds(100));
+    cancel.cancel();
+  });
+  const Stopwatch watch;
+  const Worked worked = work(folder, kAnswer, check_of("large", "large.mtx"), &cancel);
+  other.join();
+  EXPECT_EQ(worked.status.kind(), StatusKind::kInterrupted);
+  EXPECT_TRUE(worked.recorded.empty());
+  EXPECT_LT(watch.seconds(), 60);  // reading it all takes ten minutes or more
+}
+
+TEST(Batch, AnInputThatChangesBeforeItsJobIsReadAgain) {
+  const TestFolder folder;
+  folder.write("K.mtx", "some bytes");
+  folder.write("L.mtx", "as long as the first job has not ended");
+  // One processor: the second job begins when the first one has ended.
+  const std::string jobs = check_of("first", "K.mtx") + check_of("second", "L.mtx");
+  const Worked worked = work(folder, kAnswer + "[ -e ran ] || echo changed > L.mtx; touch ran\n", jobs);
+  ASSERT_EQ(worked.recorded.size(), 2U);
+  for (const JobResult& result : worked.recorded) EXPECT_EQ(result.exit_code, 0) << result.reason;
+  const auto listed = read_job_list(jobs, "jobs", folder.path(), rules());
+  FileDigests files;
+  EXPECT_EQ(*digest_of((*listed)[1].request, files), *worked.recorded[1].digest);
+}
+
+TEST(Batch, AnInputThatChangesWhileItsJobRunsSpoilsTheResult) {
+  const TestFolder folder;
+  folder.write("K.mtx", "some bytes");
+  const Worked worked = work(folder, kAnswer + "echo changed > K.mtx\n", check_of("a", "K.mtx"));
+  ASSERT_EQ(worked.recorded.size(), 1U);
+  EXPECT_EQ(worked.recorded[0].exit_code, 2);
+  EXPECT_EQ(worked.recorded[0].reason, "an input changed while the job ran");
+  EXPECT_FALSE(worked.recorded[0].digest);
+}
+
+TEST(Batch, AnInputThatIsTouchedWhileItsJobRunsIsTheSame) {
+  const TestFolder folder;
+  folder.write("K.mtx", "some bytes");
+  const Worked worked = work(folder, kAnswer + "touch -d 2001-01-01 K.mtx\n", check_of("a", "K.mtx"));
+  ASSERT_EQ(worked.recorded.size(), 1U);
+  EXPECT_EQ(worked.recorded[0].exit_code, 0);
+  EXPECT_TRUE(worked.recorded[0].digest);
+}
 
 TEST(Batch, AJobThatAbortsIsTriedOnceMoreWithAllTheMemory) {
   const Tried job = tried("kill -ABRT $$", 64 * kGibi);
