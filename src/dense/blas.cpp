@@ -1,6 +1,12 @@
 #include "dense/blas.hpp"
 
 #include <dlfcn.h>
+#include <sys/mman.h>
+
+#include <algorithm>
+#include <mutex>
+#include <new>
+#include <vector>
 
 extern "C" {
 void dgemm_(const char* transa, const char* transb, const int* m, const int* n, const int* k,
@@ -14,6 +20,39 @@ namespace {
 template <class Function>
 Function find_symbol(const char* name) {
   return reinterpret_cast<Function>(dlsym(RTLD_DEFAULT, name));
+}
+
+// OpenBLAS keeps 128 MiB of address space for every thread that is inside a product, and a little to align
+// it.
+constexpr std::size_t kOpenBlasBytes = std::size_t{136} << 20;
+
+/// Whether the system would give so much now, under the limits of the process.
+bool there_is_room(std::size_t bytes) {
+  void* const place = ::mmap(nullptr, bytes, PROT_READ | PROT_WRITE, MAP_PRIVATE | MAP_ANONYMOUS, -1, 0);
+  if (place == MAP_FAILED) return false;
+  ::munmap(place, bytes);
+  return true;
+}
+
+/// Lets OpenBLAS take what `callers` threads need at a time; it keeps that for later products.
+void reserve_for(int callers) {
+  static std::mutex mutex;
+  static int reserved = 0;  // what the library holds, for the whole process
+  const auto allocate = find_symbol<void* (*)(int)>("blas_memory_alloc");
+  const auto release = find_symbol<void (*)(void*)>("blas_memory_free");
+  if (allocate == nullptr || release == nullptr) return;
+  const std::lock_guard lock(mutex);
+  if (callers <= reserved) return;
+  std::vector<void*> held;
+  held.reserve(static_cast<std::size_t>(callers));
+  while (static_cast<int>(held.size()) < callers) {
+    const bool kept = static_cast<int>(held.size()) < reserved;
+    if (!kept && !there_is_room(kOpenBlasBytes)) break;
+    held.push_back(allocate(0));
+  }
+  reserved = std::max(reserved, static_cast<int>(held.size()));
+  for (void* place : held) release(place);
+  if (reserved < callers) throw std::bad_alloc();
 }
 
 }  // namespace
@@ -33,8 +72,9 @@ void gemm_tn(Index m, Index n, Index k, double alpha, const double* a, Index lda
   dgemm_("T", "N", &m, &n, &k, &alpha, a, &lda, b, &ldb, &beta, c, &ldc);
 }
 
-void use_single_threaded_blas() {
+void use_single_threaded_blas(int callers) {
   if (auto set = find_symbol<void (*)(int)>("openblas_set_num_threads")) set(1);
+  reserve_for(callers);
 }
 
 std::string blas_description() {

@@ -20,8 +20,11 @@ void gemm_nn(Index m, Index n, Index k, double alpha, const double* a, Index lda
 void gemm_tn(Index m, Index n, Index k, double alpha, const double* a, Index lda, const double* b, Index ldb,
              double beta, double* c, Index ldc);
 
-/// Turns the library's own threads off, once per process. Call before the first product.
-void use_single_threaded_blas();
+/// Turns the library's own threads off. Call before the first product. `callers`: how many threads of ours
+/// multiply at a time; where the library keeps memory for each of them, it is taken now. Throws
+/// std::bad_alloc when there is none: OpenBLAS, refused it in the middle of a product, would ask for ever.
+/// Thread safe.
+void use_single_threaded_blas(int callers = 1);
 
 /// Name, version and kernel of the BLAS in use, as it reports itself.
 std::string blas_description();

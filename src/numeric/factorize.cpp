@@ -178,8 +178,8 @@ Status check_fault(const Analysis& analysis, const Factorization& factorization)
 
 Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix,
                                 const FactorOptions& options, ThreadPool& pool) {
-  use_single_threaded_blas();
   try {
+    use_single_threaded_blas();
     if (!options.single) return Factorizer<double>(analysis, matrix, options, pool).run();
     if (analysis.tree.rows > kMostSingleRows) return Status::internal("too many rows for single precision");
     return Factorizer<float>(analysis, matrix, options, pool).run();

@@ -73,7 +73,7 @@ BlockLanczos::BlockLanczos(Operator apply, Index rows, Index most_columns, std::
       projected_(at(Offset{most_columns} * most_columns), 0.0),
       next_(at(Offset{rows} * kV)),
       coupling_(kV * kV, 0.0) {
-  use_single_threaded_blas();
+  use_single_threaded_blas(pool.size());
   if (rows <= kDense) {
     take_whole_space();
     return;

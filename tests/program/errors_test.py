@@ -1,9 +1,11 @@
 """What the program says when it cannot answer: bad usage, bad input, limits."""
 
+import os
 import re
+import resource
 import unittest
 
-from program import ProgramTest, chain
+from program import ProgramTest, chain, diagonal
 
 
 class UsageTest(ProgramTest):
@@ -103,6 +105,24 @@ class LimitTest(ProgramTest):
 
     def test_a_sufficient_cap_changes_nothing(self):
         self.expect(0, "check", self.matrix("K.mtx", 3000, chain(3000)), "--memory-cap", "2G")
+
+    @unittest.skipIf(os.environ.get("STANCHION_SANITIZED"), "a sanitizer reserves more than any limit allows")
+    def test_dense_products_without_memory_end_the_run(self):
+        # OpenBLAS wants 128 MiB of address space for each thread inside a product and, refused it, asks for ever.
+        self.matrix("K.mtx", 2000, chain(2000))
+        self.matrix("M.mtx", 2000, diagonal([1] * 2000))
+
+        def limited():
+            resource.setrlimit(resource.RLIMIT_DATA, (300 << 20, 300 << 20))
+            resource.setrlimit(resource.RLIMIT_CPU, (60, 60))
+
+        bracket = ("bracket", "K.mtx", "--mass", "M.mtx", "--first", 2)
+        environment = {**os.environ, "OPENBLAS_NUM_THREADS": "1"}
+        run = self.run_program(*bracket, "--threads", 8, preexec_fn=limited, env=environment)
+        self.assertEqual((run.returncode, run.stdout), (4, ""), run.stderr)
+        self.assertIn("[out-of-memory]", run.stderr)
+        self.assertEqual(self.run_program(*bracket, "--threads", 1, preexec_fn=limited, env=environment).returncode, 0)
+
 
 
 if __name__ == "__main__":
