@@ -262,12 +262,13 @@ class Audit {
       placement_open_ = placement_open_ || placed == Placement::kOpen;
       return placed != Placement::kRefuted;
     }
-    if (stretch.listed < 2) return true;
     for (const std::size_t k : stretch.certain_spans) {
       const FoundValues& values = found->values[k];
       certain.push_back({values.low, values.high, values.count, {}});
     }
-    return each_has_its_own(listed, certain);
+    if (!each_has_its_own(listed, certain)) return false;
+    placement_open_ = placement_open_ || !each_surely_has_its_own(listed, certain);
+    return true;
   }
 
   void report(const std::vector<Stretch>& stretches, const FoundRange* found) {
@@ -287,7 +288,12 @@ class Audit {
                       : missing          ? AuditVerdict::kMissing
                       : surplus          ? AuditVerdict::kSurplus
                                          : AuditVerdict::kComplete;
-    if (placement_open_) {
+    if (placement_open_ && found != nullptr) {
+      answer_.sentences.emplace_back(
+          "Where the numbers agree every value listed may be within its tolerance of one of its own. That it "
+          "is could not be shown for all: some of the intervals that certainly hold values are wider than "
+          "the tolerance.");
+    } else if (placement_open_) {
       answer_.proof = "counts in every gap of the list";
       answer_.sentences.emplace_back(
           "The number in every gap is certified. That every value listed is within its tolerance of one of "

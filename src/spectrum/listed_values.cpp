@@ -72,22 +72,43 @@ std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed,
   return stretches;
 }
 
-/// A listed span meets neighbouring certain ones only, so taking for each certain value the listed span that
-/// ends first is best (Glover, Naval Res. Logist. Q. 14 (1967)).
-bool each_has_its_own(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain) {
+namespace {
+
+/// The smallest and the largest value that a certain span may have to share with a listed one.
+struct Needed {
+  double low, high;
+};
+
+/// A listed span serves neighbouring certain ones only, so taking for each certain value the listed span that
+/// ends first is best (Glover, Naval Res. Logist. Q. 14 (1967)). A listed span serves where it begins at or
+/// before `needed(span).low` and ends at or behind `needed(span).high`; both ascend with the span.
+template <class Need>
+bool all_served(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain,
+                const Need& needed) {
   std::vector<ValueSpan> waiting = listed;
   sort_by_low(waiting);
   std::vector<double> open;  // ends of listed spans that have begun and have no value yet
   std::size_t next = 0, served = 0;
   for (const ValueSpan& span : certain) {
-    while (next < waiting.size() && waiting[next].low <= span.high) open.push_back(waiting[next++].high);
+    const Needed need = needed(span);
+    while (next < waiting.size() && waiting[next].low <= need.low) open.push_back(waiting[next++].high);
     std::sort(open.begin(), open.end());
-    if (!open.empty() && open.front() < span.low) return false;  // its values are all behind it
+    if (!open.empty() && open.front() < need.high) return false;  // its values are all behind it
     const std::size_t many = std::min(open.size(), static_cast<std::size_t>(span.count));
     open.erase(open.begin(), open.begin() + static_cast<std::ptrdiff_t>(many));
     served += many;
   }
   return served == listed.size();
+}
+
+}  // namespace
+
+bool each_has_its_own(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain) {
+  return all_served(listed, certain, [](const ValueSpan& span) { return Needed{span.high, span.low}; });
+}
+
+bool each_surely_has_its_own(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain) {
+  return all_served(listed, certain, [](const ValueSpan& span) { return Needed{span.low, span.high}; });
 }
 
 std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to) {

@@ -39,6 +39,10 @@ std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed,
 /// chain may hold the right number without that.
 bool each_has_its_own(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain);
 
+/// Whether every one of `listed` certainly has a value of its own within its tolerance: whole intervals of
+/// `certain`, wherever in them the values are.
+bool each_surely_has_its_own(const std::vector<ValueSpan>& listed, const std::vector<ValueSpan>& certain);
+
 /// Where one count each tells what every cluster holds: `from`, the middle between neighbouring clusters,
 /// `to`.
 std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to);

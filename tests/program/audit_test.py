@@ -75,6 +75,12 @@ class AuditTest(ProgramTest):
             self.assertEqual((document["verdict"], document["range"]["level"]), ("complete", level))
             self.assertEqual(document["range"]["failure_probability"], document["risk"] if level == "statistical" else None)
 
+    def test_tolerances_narrower_than_what_is_certain_are_not_called_kept(self):
+        moved = FIRST[:3] + [FIRST[3] * (1 + 1e-11)] + FIRST[4:]
+        for values, tolerance, shown in ((FIRST, "1e-6", True), (moved, "1e-13", False)):
+            document = self.audit(0, values, "--tolerance", tolerance)
+            self.assertEqual(any("could not be shown" in sentence for sentence in document["sentences"]), not shown)
+
     def test_one_missing(self):
         for method in ((), ("--digits", 12)):
             document = self.audit(1, FIRST[:5] + FIRST[6:], "--find-missing", *method)

@@ -52,6 +52,43 @@ TEST(ListedValues, EachNeedsAValueOfItsOwn) {
   EXPECT_TRUE(each_has_its_own({{0.9, 3, 1, {}}, {0.9, 1, 1, {}}}, certain));
 }
 
+/// Sure is what holds wherever in their intervals the values are: tried at all ends of all intervals.
+TEST(ListedValues, SurelyMeansWhereverInTheirIntervalsTheValuesAre) {
+  std::mt19937 random(12);
+  int sure = 0, open = 0;
+  for (int round = 0; round < 4000; ++round) {
+    const int n = 1 + static_cast<int>(random() % 4);
+    std::vector<ValueSpan> listed, certain;
+    double at = 0;
+    for (int k = 0; k < n; ++k) {
+      const double low = at + 1 + static_cast<double>(random() % 3);
+      at = low + static_cast<double>(random() % 3);
+      certain.push_back(span(low, at));
+      const double from = low - static_cast<double>(random() % 3);
+      listed.push_back(span(from, std::max(from, at + static_cast<double>(random() % 4) - 0.5)));
+    }
+    std::shuffle(listed.begin(), listed.end(), random);
+    bool always = true;
+    for (int ends = 0; ends < 1 << n; ++ends) {
+      std::vector<ValueSpan> values;
+      for (int k = 0; k < n; ++k) {
+        const ValueSpan& interval = certain[static_cast<std::size_t>(k)];
+        const double value = (ends >> k) % 2 == 0 ? interval.low : interval.high;
+        values.push_back(span(value, value));
+      }
+      always = always && each_has_its_own(listed, values);
+    }
+    const bool said = each_surely_has_its_own(listed, certain);
+    EXPECT_TRUE(!said || always);
+    if (n == 1) {
+      EXPECT_EQ(said, always);
+    }
+    said ? ++sure : ++open;
+  }
+  EXPECT_GT(sure, 500);
+  EXPECT_GT(open, 500);
+}
+
 /// Counts at every end against the assignment of values that are known.
 TEST(ListedValues, CountsAtTheEndsPlaceAsKnownValuesDo) {
   std::mt19937 random(11);
