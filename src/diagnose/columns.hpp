@@ -30,14 +30,14 @@ inline Index whole_blocks(Index number) {
 }
 
 /// Calls use(block) on a copy of every eight columns, each kBlockVectors doubles a row, and puts the block
-/// back.
+/// back. `block`: space for it, kept by whoever calls often.
 template <class Use>
-void each_block(Columns& columns, const Use& use) {
+void each_block(Columns& columns, std::vector<double>& block, const Use& use) {
   if (columns.count == kBlockVectors) {
     use(columns.values.data());
     return;
   }
-  std::vector<double> block(static_cast<std::size_t>(columns.rows) * kBlockVectors);
+  block.resize(static_cast<std::size_t>(columns.rows) * kBlockVectors);
   for (Index first = 0; first < columns.count; first += kBlockVectors) {
     for (Index i = 0; i < columns.rows; ++i) {
       const double* from = columns.row(i) + first;

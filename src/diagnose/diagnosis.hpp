@@ -26,6 +26,7 @@ struct DiagnosisInput {
   bool constraints_apply = true;  ///< false: multipliers act on each other
   LocateOptions options;
   std::uint64_t seed = 1;
+  bool may_sharpen = true;  ///< the matrix can be certified again with a smaller offset
 };
 
 struct Diagnosis {
@@ -34,10 +35,14 @@ struct Diagnosis {
   std::optional<double> sharper_resolution;
 };
 
-/// Finds, purifies, judges and names. When `sharper_resolution` is set nothing else is filled: certify again
-/// with it. Every located direction is held against A_s itself in double-double. Reproducible for any number
-/// of threads. Throws std::bad_alloc. Cost: some ten solves and products; memory: some vectors beside the
-/// factor.
+/// Finds, purifies, judges and names. When `sharper_resolution` is set, which it never is unless the input
+/// allows it, nothing else is filled: certify again with it. Every located direction is held against A_s
+/// itself in double-double. Reproducible for any number of threads. Throws std::bad_alloc. Cost: some ten
+/// solves and products; memory: diagnosis_bytes() beside the factor.
 Diagnosis diagnose(const DiagnosisInput& input, ThreadPool& pool);
+
+/// Forecast of the memory that diagnose() takes beside matrix and factor, for so many zero and negative
+/// directions (those of multipliers not among them).
+Offset diagnosis_bytes(Index rows, Index zero, Index negative, const LocateOptions& options);
 
 }  // namespace stanchion

@@ -51,7 +51,7 @@ void KeptFactor::scale(double* block, Power power) const {
 }
 
 void KeptFactor::solve(Columns& x) {
-  each_block(x, [this](double* block) {
+  each_block(x, block_, [this](double* block) {
     solver_.forward(block);
     scale(block, Power::kInverse);
     solver_.backward(block);
@@ -59,7 +59,7 @@ void KeptFactor::solve(Columns& x) {
 }
 
 void KeptFactor::solve_absolute(Columns& x) {
-  each_block(x, [this](double* block) {
+  each_block(x, block_, [this](double* block) {
     solver_.forward(block);
     scale(block, Power::kAbsoluteInverse);
     solver_.backward(block);
@@ -67,7 +67,7 @@ void KeptFactor::solve_absolute(Columns& x) {
 }
 
 void KeptFactor::half_solve(Columns& x) {
-  each_block(x, [this](double* block) {
+  each_block(x, block_, [this](double* block) {
     scale(block, Power::kAbsoluteRoot);
     solver_.backward(block);
   });
@@ -123,7 +123,7 @@ Columns KeptFactor::lowest_pivot_vectors(Index most, Index* filled) {
       if (found[c].position[s] >= 0) x.row(found[c].position[s])[c] = found[c].entry[s];
     }
   }
-  each_block(x, [this](double* block) { solver_.backward(block); });
+  each_block(x, block_, [this](double* block) { solver_.backward(block); });
   return x;
 }
 

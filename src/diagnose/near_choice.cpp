@@ -2,12 +2,14 @@
 
 #include <algorithm>
 #include <cmath>
+#include <utility>
 
 namespace stanchion {
 namespace {
 
-constexpr Index kMostColumns = 64;  ///< vectors of one part that are looked at together
-constexpr Index kSpareColumns = 2;  ///< to see what lies behind the wanted ones
+constexpr Index kMostColumns = 64;                ///< vectors of one part that are looked at together
+constexpr Index kSpareColumns = 2;                ///< to see what lies behind the wanted ones
+constexpr Index kFullOfWeak = 3 * kBlockVectors;  ///< so many are tried to see behind weak ones
 /// A direction is told from the rest of the spectrum when the next one is so many times larger.
 constexpr double kGap = 100;
 constexpr double kSharpenAbove = 8;  ///< a resolution this many times its bound can be made smaller
@@ -37,28 +39,31 @@ void choose_weak(const Evidence& e, const Ritz& ritz, std::size_t begin, bool ex
 
 }  // namespace
 
-void look_near_zero(Evidence& e) {
-  const Index left = e.inertia.zero - static_cast<Index>(e.motions.size());
-  Index columns = whole_blocks(std::min(std::max<Index>(left, 0) + kSpareColumns, kMostColumns));
-  for (;;) {
-    e.near = find_near_zero(
-        e.s, e.in.matrix, e.factor, e.motions,
-        {columns, std::max(e.in.options.weak_below, 2 * e.resolution), 2 * e.resolution, e.in.seed}, e.pool);
-    // Weak directions that fill all columns of a part hide whether they stand apart.
-    if (columns >= 3 * kBlockVectors || !full_of_weak(e)) return;
-    columns += kBlockVectors;
-  }
+Index most_near_columns(Index zero) {
+  return std::max(kFullOfWeak, whole_blocks(std::min(zero + kSpareColumns, kMostColumns)));
 }
 
-bool wants_sharper_offset(const Evidence& e) {
-  if (e.inertia.zero == 0 || e.resolution <= kSharpenAbove * e.bound()) return false;
-  for (const PartPairs& pairs : e.near.parts) {
-    for (std::size_t k = 0; k < pairs.ritz.value.size(); ++k) {
-      const double size = std::fabs(pairs.ritz.value[k]);
-      if (size <= e.resolution && size - pairs.ritz.residual[k] > kSharpenAbove * e.bound()) return true;
+bool look_near_zero(Evidence& e) {
+  const Index left = e.inertia.zero - static_cast<Index>(e.motions.size());
+  NearZeroOptions options;
+  options.columns = whole_blocks(std::min(std::max<Index>(left, 0) + kSpareColumns, kMostColumns));
+  options.wanted = std::max(e.in.options.weak_below, 2 * e.resolution);
+  options.zero = 2 * e.resolution;
+  options.seed = e.in.seed;
+  const bool sharper = e.in.may_sharpen && e.inertia.zero > 0 && e.resolution > kSharpenAbove * e.bound();
+  if (sharper) options.enough = {kSharpenAbove * e.bound(), e.resolution};
+  for (;;) {
+    Columns start = std::move(e.near.x);
+    e.near = find_near_zero(e.s, e.in.matrix, e.factor, e.motions, options, std::move(start), e.pool);
+    if (any_told_apart(e.near, options)) return true;
+    if (e.near.cut_short) {  // by what extended precision does not bear out
+      options.enough = {};
+      continue;
     }
+    // Weak directions that fill all columns of a part hide whether they stand apart.
+    if (options.columns >= kFullOfWeak || !full_of_weak(e)) return false;
+    options.columns += kBlockVectors;
   }
-  return false;
 }
 
 void choose_zero_and_weak(Evidence& e) {

@@ -5,11 +5,13 @@
 
 namespace stanchion {
 
-/// Fills `near`: enough vectors of every part that what lies behind the wanted ones is seen.
-void look_near_zero(Evidence& evidence);
+/// Fills `near`: enough vectors of every part that what lies behind the wanted ones is seen. True, and `near`
+/// not complete, when something small, but not zero, was found that a smaller offset would tell from what the
+/// inertia calls zero, and certifying again is possible.
+bool look_near_zero(Evidence& evidence);
 
-/// Small, but not zero: whether another offset would tell apart what the inertia calls zero.
-bool wants_sharper_offset(const Evidence& evidence);
+/// So many vectors look_near_zero() holds at most, for so many zero directions.
+Index most_near_columns(Index zero);
 
 /// Fills `choice` from `near`. Membership is certain when the next eigenvalue is far away, or there is none.
 void choose_zero_and_weak(Evidence& evidence);

@@ -2,6 +2,8 @@
 
 #include <algorithm>
 #include <cmath>
+#include <tuple>
+#include <utility>
 
 #include "base/counter_random.hpp"
 
@@ -14,13 +16,19 @@ constexpr double kRoundingResidual = 3e-15, kRelativeResidual = 1e-4;
 constexpr double kRoughResidual = 0.1;  ///< of the first pair behind the gap
 constexpr double kGapInSight = 20;      ///< estimates from above only bring values closer together
 
-Columns random_columns(Index rows, Index count, std::uint64_t seed) {
+/// `start`, and random columns after it.
+Columns filled_up(Columns start, Index rows, Index count, std::uint64_t seed) {
   Columns x(rows, count);
-  const CounterRandom random(seed, 0x6c6f63617465ULL);
-  for (std::size_t k = 0; k < x.values.size(); k += 2) {
-    const auto [a, b] = random.gaussians(k / 2);
-    x.values[k] = a;
-    if (k + 1 < x.values.size()) x.values[k + 1] = b;
+  const CounterRandom random(seed, 0x6c6f63617465ULL + static_cast<std::uint64_t>(start.count));
+  const Index fresh = count - start.count;  // a multiple of eight
+  for (Index i = 0; i < rows; ++i) {
+    double* row = x.row(i);
+    if (start.count > 0) std::copy_n(start.row(i), start.count, row);
+    const auto number = static_cast<std::uint64_t>(Offset{i} * fresh / 2);
+    for (Index v = 0; v < fresh; v += 2) {
+      std::tie(row[start.count + v], row[start.count + v + 1]) =
+          random.gaussians(number + static_cast<std::uint64_t>(v / 2));
+    }
   }
   return x;
 }
@@ -58,11 +66,22 @@ void project_all(const Structure& s, NearZero& found, Columns& product) {
 
 }  // namespace
 
+bool any_told_apart(const NearZero& found, const NearZeroOptions& options) {
+  for (const PartPairs& pairs : found.parts) {
+    for (std::size_t k = 0; k < pairs.ritz.value.size(); ++k) {
+      if (options.enough.holds(std::fabs(pairs.ritz.value[k]), pairs.ritz.residual[k])) return true;
+    }
+  }
+  return false;
+}
+
 NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
-                        const std::vector<NodeMotion>& motions, const NearZeroOptions& options,
+                        const std::vector<NodeMotion>& motions, const NearZeroOptions& options, Columns start,
                         ThreadPool& pool) {
   NearZero found;
-  found.x = random_columns(structure.rows, options.columns, options.seed);
+  found.x = filled_up(std::move(start), structure.rows, options.columns, options.seed);
+  std::vector<double> scratch;
+  Columns product;
   for (Index part = 0; part < structure.parts; ++part) found.parts.push_back({part, 0, {}});
   remove(motions, structure, found.x);
   double before = INFINITY;
@@ -70,16 +89,21 @@ NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix,
     found.rounds = round;
     factor.solve(found.x);
     remove(motions, structure, found.x);
-    for (PartPairs& pairs : found.parts) pairs.used = orthonormalise(found.x, structure.part(pairs.part));
+    for (PartPairs& pairs : found.parts) {
+      pairs.used = orthonormalise(found.x, structure.part(pairs.part), scratch);
+    }
     if (round == 1) continue;
-    Columns product = times(matrix, found.x);
+    multiply(matrix, found.x, product);
     project_all(structure, found, product);
+    found.cut_short = any_told_apart(found, options);
+    if (found.cut_short) break;
     const double open = open_residual(found, options);
     // The second round settles that nothing is near zero; a residual that falls no more is rounding.
     if (open <= 1 || (round > 2 && !(open < before / 2))) break;
     before = open;
   }
-  Columns product = times_extended(matrix, found.x, pool);
+  std::vector<double>().swap(scratch);
+  multiply_extended(matrix, found.x, product, pool);
   project_all(structure, found, product);
   return found;
 }

@@ -126,6 +126,22 @@ class Iteration {
   /// directions.
   Ritz step() {
     const Index width = x_.count, active = std::min(used_, active_);
+    Columns span = span_of(width, active);
+    const Columns before = std::move(x_);
+    const Index used = orthonormalise(span, all_);
+    // x comes first and is orthonormal already: where nothing of it was dropped its product is known.
+    const Index known = used_ == width ? width : 0;
+    Columns product = applied(span, known);
+    for (Index i = 0; i < s_.rows; ++i) std::copy_n(ax_.row(i), known, product.row(i));
+    Ritz ritz = project(span, product, all_, used, false, width);
+    x_ = leading(span, width, used);
+    ax_ = leading(product, width, used);
+    used_ = std::min(used, width);
+    keep_directions(before, width, active);
+    return ritz;
+  }
+
+  Columns span_of(Index width, Index active) const {
     Columns w(s_.rows, width);
     for (Index i = 0; i < s_.rows; ++i) {
       for (Index c = 0; c < active; ++c) {
@@ -145,17 +161,11 @@ class Iteration {
       std::copy_n(plain.row(i), active, to + width + active);
       std::copy_n(p_.row(i), active, to + width + 2 * active);
     }
-    const Columns before = x_;
-    const Index used = orthonormalise(span, all_);
-    // x comes first and is orthonormal already: where nothing of it was dropped its product is known.
-    const Index known = used_ == width ? width : 0;
-    Columns product = applied(span, known);
-    for (Index i = 0; i < s_.rows; ++i) std::copy_n(ax_.row(i), known, product.row(i));
-    Ritz ritz = project(span, product, all_, used, false, width);
-    x_ = leading(span, width, used);
-    ax_ = leading(product, width, used);
-    used_ = std::min(used, width);
-    // The next directions: the new vectors less their parts along the old ones.
+    return span;
+  }
+
+  /// The next directions: the new vectors less their parts along the old ones.
+  void keep_directions(const Columns& before, Index width, Index active) {
     p_ = Columns(s_.rows, width);
     std::vector<double> overlap(static_cast<std::size_t>(width) * static_cast<std::size_t>(active), 0.0);
     const auto entry = [&](Index a, Index b) -> double& {
@@ -173,7 +183,6 @@ class Iteration {
         for (Index b = 0; b < active; ++b) to[b] -= before.row(i)[a] * entry(a, b);
       }
     }
-    return ritz;
   }
 
   NegativePairs finish(Index wanted, int round) {
@@ -204,6 +213,13 @@ class Iteration {
 };
 
 }  // namespace
+
+Index negative_columns(Index wanted) {
+  const Index active = wanted + kGuards, width = whole_blocks(active);
+  // The pairs, their products, the last directions, the pairs before; the span with a copy or with its
+  // product.
+  return 4 * width + 2 * whole_blocks(width + 3 * active);
+}
 
 NegativePairs find_negative(const NegativeSearch& search, Index negative, Index most, ThreadPool& pool) {
   if (negative == 0 || most == 0) return {};

@@ -36,4 +36,7 @@ struct NegativeSearch {
 /// Cost: a round takes one solve and two products.
 NegativePairs find_negative(const NegativeSearch& search, Index negative, Index most, ThreadPool& pool);
 
+/// Vectors that find_negative() holds at most while it looks for `wanted`.
+Index negative_columns(Index wanted);
+
 }  // namespace stanchion

@@ -50,9 +50,11 @@ void subtract_along(const double* q, Index basis, double* b, Index columns, Inde
 
 }  // namespace
 
-Columns times(const ShiftedMatrix& matrix, const Columns& x, Index from) {
+void multiply(const ShiftedMatrix& matrix, const Columns& x, Columns& y, Index from) {
   const MatrixFamily& family = *matrix.family;
-  Columns y(x.rows, x.count);
+  y.rows = x.rows;
+  y.count = x.count;
+  y.values.assign(x.values.size(), 0.0);
   for (Index first = from; first < x.count; first += kBlockVectors) {  // eight at a time stay in registers
     for (Index j = 0; j < family.rows; ++j) {
       const double* x_j = x.row(j) + first;
@@ -70,24 +72,39 @@ Columns times(const ShiftedMatrix& matrix, const Columns& x, Index from) {
       for (Index c = 0; c < kBlockVectors; ++c) y_j[c] += sum[c];
     }
   }
+}
+
+Columns times(const ShiftedMatrix& matrix, const Columns& x, Index from) {
+  Columns y;
+  multiply(matrix, x, y, from);
   return y;
 }
 
-Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool& pool) {
-  Columns y = x;
-  std::vector<double> product(static_cast<std::size_t>(x.rows) * kBlockVectors);
-  each_block(y, [&](double* block) {
-    extended_times(matrix, block, product.data(), pool);
-    std::copy(product.begin(), product.end(), block);
+void multiply_extended(const ShiftedMatrix& matrix, const Columns& x, Columns& y, ThreadPool& pool) {
+  y = x;
+  std::vector<double> product(static_cast<std::size_t>(x.rows) * kBlockVectors), block;
+  each_block(y, block, [&](double* eight) {
+    extended_times(matrix, eight, product.data(), pool);
+    std::copy(product.begin(), product.end(), eight);
   });
+}
+
+Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool& pool) {
+  Columns y;
+  multiply_extended(matrix, x, y, pool);
   return y;
 }
 
 Index orthonormalise(Columns& x, RowGroup group) {
+  std::vector<double> scratch;
+  return orthonormalise(x, group, scratch);
+}
+
+Index orthonormalise(Columns& x, RowGroup group, std::vector<double>& local) {
   constexpr Index kWidth = 8;  // columns that go through the basis together
   const std::size_t n = group.size();
   const auto rows = static_cast<Index>(n);
-  std::vector<double> local(n * static_cast<std::size_t>(x.count));
+  local.resize(n * static_cast<std::size_t>(x.count));
   gather_rows(x, group, 0, n, x.count, local.data(), n);
   const auto column = [&](Index c) { return local.data() + static_cast<std::size_t>(c) * n; };
   Index used = 0;

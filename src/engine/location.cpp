@@ -1,10 +1,16 @@
 #include "engine/location.hpp"
 
+#include <algorithm>
+
+#include "base/clock.hpp"
 #include "diagnose/diagnosis.hpp"
+#include "engine/host.hpp"
 #include "engine/mass_totals.hpp"
 
 namespace stanchion {
 namespace {
+
+constexpr int kMostRounds = 2;  ///< of certifying again with a smaller offset
 
 void leave_out(const char* code, const char* what, const char* instead, const Status& because,
                Outcome& outcome) {
@@ -13,6 +19,22 @@ void leave_out(const char* code, const char* what, const char* instead, const St
                                   ". Reason: " + because.message() +
                                   (because.remedy().empty() ? "" : ". Remedy: " + because.remedy()),
                               because.place()});
+}
+
+/// The forecast of memory, now that the number of directions is known; refuses what does not fit.
+Status forecast_locating(const PreparedPencil& pencil, const Inertia& inertia, const ConstraintRank& rank,
+                         const Request& request, Outcome& outcome) {
+  const Index negative = std::max<Index>(0, inertia.negative - rank.least);
+  const Offset needed =
+      with_allowance(diagnosis_bytes(pencil.analysis().tree.rows, inertia.zero, negative, request.locate));
+  outcome.memory.forecast = std::max(outcome.memory.forecast, resident_bytes() + needed);
+  if (needed <= pencil.free_bytes()) return {};
+  return Status::resource_limit("memory-cap",
+                                "the vectors of so many zero and negative directions are forecast to take " +
+                                    std::to_string(needed >> 20) +
+                                    " MiB beside what is in use, more than there is",
+                                outcome.inputs.empty() ? "" : outcome.inputs.front().path,
+                                "raise --memory-cap, use a larger machine, or ask for fewer with --most");
 }
 
 }  // namespace
@@ -67,20 +89,26 @@ Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const Locati
   const ModelNames names{facts.dofs ? &*facts.dofs : nullptr, facts.nodes ? &*facts.nodes : nullptr,
                          facts.axes ? &*facts.axes : nullptr, &facts.original, &facts.multipliers};
   std::optional<double> resolution;
+  double seconds = 0;
   for (int round = 0;; ++round) {
     std::optional<KeptFactorization> kept;
     auto certified = pencil.certify_keeping(resolution, 0, kept, pool, outcome);
     if (!certified.ok()) return certified.status();
     if (certified->certificate.level == Level::kNone || !kept) return certified;
-    auto diagnosis =
-        diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare, *kept, *certified,
-                  names, rank.least, rank.least == rank.most, rank.bordered, request.locate, pencil.seed()},
-                 pool);
-    if (diagnosis.sharper_resolution && round < 2 && !request.resolution) {
+    if (Status fits = forecast_locating(pencil, certified->inertia, rank, request, outcome); !fits.ok())
+      return fits;
+    const Stopwatch watch;
+    auto diagnosis = diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare,
+                               *kept, *certified, names, rank.least, rank.least == rank.most, rank.bordered,
+                               request.locate, pencil.seed(), round < kMostRounds && !request.resolution},
+                              pool);
+    seconds += watch.seconds();
+    if (diagnosis.sharper_resolution) {
       resolution = diagnosis.sharper_resolution;
       continue;
     }
     diagnosis.outcome.mass = facts.mass;
+    diagnosis.outcome.seconds = seconds;
     outcome.located = std::move(diagnosis.outcome);
     return certified;
   }

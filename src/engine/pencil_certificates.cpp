@@ -3,6 +3,7 @@
 #include <cmath>
 
 #include "base/counter_random.hpp"
+#include "diagnose/diagnosis.hpp"
 #include "engine/prepared_pencil.hpp"
 #include "inertia/witness.hpp"
 #include "sparse/scaling.hpp"
@@ -116,7 +117,10 @@ Result<CertifiedInertia> PreparedPencil::certify_positive_side(double factor, In
 Result<CertifiedInertia> PreparedPencil::certify_keeping(std::optional<double> resolution, double data_error,
                                                          std::optional<KeptFactorization>& kept,
                                                          ThreadPool& pool, Outcome& outcome) {
-  const Offset needed = analysis_.forecast.peak_bytes_solve;
+  // Whoever keeps the factor to locate holds vectors beside it; how many is known once the inertia is.
+  const Offset vectors = diagnosis_bytes(analysis_.tree.rows, 0, 0, {});
+  const Offset needed = std::max(analysis_.forecast.peak_bytes_solve,
+                                 analysis_.forecast.stored_factor_entries * Offset{sizeof(double)} + vectors);
   if (needed > bytes_for_factor()) {
     return cannot_keep_factor(needed, outcome);
   }

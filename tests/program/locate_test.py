@@ -56,6 +56,14 @@ class LocateTest(ProgramTest):
         shown = sum(direction["count"] for direction in document["directions"])
         self.assertEqual(shown + document["location"]["not_located"], 15)
 
+    def test_directions_that_a_coarse_resolution_calls_zero_are_not_passed_over(self):
+        for fault in ("none", "negative-spring"):
+            folder = self.specimen("plate", 1000, "--fault", fault)
+            document = self.locate(3, folder, "--resolution", "1e-2")
+            self.assertGreater(document["inertia"]["zero"], 0)
+            self.assertEqual(sum(d["count"] for d in document["directions"] if d["sign"] == 0), document["inertia"]["zero"])
+            self.assertEqual({d["kind"] for d in document["directions"]}, {"unresolved"})
+
     def test_weak_level(self):
         folder = self.specimen("solid", 600, "--fault", "soft-spring")
         self.assertEqual(self.locate(0, folder, "--weak-below", "1e-15")["directions"], [])
