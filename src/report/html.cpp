@@ -220,10 +220,10 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
                       program_name(), program_version(), escaped(outcome.command));
   html += "<div class=\"verdict\">" + verdict_mark(good, unresolved) + "<div>\n";
   for (std::size_t k = 0; k < lead; ++k) {
-    html += fmt::format("<p{}>{}</p>\n", k == 0 ? " class=\"lead\"" : "", escaped(blocks[k].text));
+    html += fmt::format("<p{}>{}</p>\n", k == 0 ? " class=\"lead\"" : "", flowing(blocks[k].text));
   }
-  if (outcome.located) html += fmt::format("<p>{}</p>\n", escaped(location_headline(*outcome.located)));
-  html += fmt::format("<p class=\"stand\">{}</p></div></div>\n", escaped(standing(outcome)));
+  if (outcome.located) html += fmt::format("<p>{}</p>\n", flowing(location_headline(*outcome.located)));
+  html += fmt::format("<p class=\"stand\">{}</p></div></div>\n", flowing(standing(outcome)));
   html += question_to_html(outcome);
   if (outcome.located) html += band("Where and why", causes_to_html(*outcome.located));
   // What follows up to the first title belongs to the answer; titles open sections of their own.
@@ -248,7 +248,7 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   html += band("Warnings", blocks_to_html(warnings.blocks(), 0, warnings.blocks().size()));
   html += band("Inputs, work, time", inputs_to_html(outcome));
   std::string open;
-  for (const std::string& sentence : outcome.not_checked) open += "<li>" + escaped(sentence) + "</li>\n";
+  for (const std::string& sentence : outcome.not_checked) open += "<li>" + flowing(sentence) + "</li>\n";
   html += band("Not checked", open.empty() ? open : "<ul>\n" + open + "</ul>\n");
   html += fmt::format(
       "<footer>Made by {} {}. This page stands alone: it loads nothing and runs "

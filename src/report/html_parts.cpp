@@ -18,7 +18,7 @@ constexpr std::size_t kNodesShown = 8, kMarks = 2, kPartsShown = 12;
 constexpr std::size_t kMostLinks = 16000, kCoarseNodes = 4000;  ///< that an overview shows
 
 std::string tag(const char* name, const std::string& text) {
-  return fmt::format("<{0}>{1}</{0}>", name, escaped(text));
+  return fmt::format("<{0}>{1}</{0}>", name, flowing(text));
 }
 
 std::string table_of(const Page::Block& block) {
@@ -96,10 +96,10 @@ std::string figure_of(const LocateOutcome& located, const Direction& direction,
     caption += fmt::format(" Of {} nodes one in every few pixels is drawn.",
                            grouped(static_cast<Offset>(located.picture.node.size())));
   if (!drawing.close_up.empty())
-    caption += fmt::format(" Right: close up on node {}, with node numbers.",
+    caption += fmt::format(" Beside it, or below: close up on node {}, with node numbers.",
                            located.picture.node[marks.front().node]);
   return fmt::format("<figure><div class=\"plates\">{}{}</div><figcaption>{}</figcaption></figure>\n",
-                     drawing.overview, drawing.close_up, escaped(caption));
+                     drawing.overview, drawing.close_up, flowing(caption));
 }
 
 /// Shape beside colour: a negative direction points down, a zero one is level, a weak one leans, an open one
@@ -123,7 +123,7 @@ std::string cause_to_html(const LocateOutcome& located, const Direction& directi
       "class=\"tally\">{}</span></header>\n",
       direction.cause == Cause::kUnresolved ? "open" : "heed", sign_mark(direction), number,
       title_of(direction.cause), how_many(direction));
-  html += fmt::format("<p class=\"why\">{}</p>\n", escaped(direction.explanation));
+  html += fmt::format("<p class=\"why\">{}</p>\n", flowing(direction.explanation));
   html += figure_of(located, direction, reduced);
   std::string facts;
   const auto fact = [&facts](const char* label, const std::string& text) {
@@ -152,6 +152,13 @@ std::string cause_to_html(const LocateOutcome& located, const Direction& directi
 }
 
 /// Bars by half digits, with the two levels.
+/// As wide as a bar at most; the exact number is in the bar's title.
+std::string short_count(Index count) {
+  if (count < 10'000) return std::to_string(count);
+  if (count < 1'000'000) return fmt::format("{:.0f}k", count / 1e3);
+  return fmt::format("{:.2g}M", count / 1e6);
+}
+
 std::string histogram(const LocalAccuracy& accuracy) {
   constexpr double kWidth = 640, kHeight = 210, kLeft = 20, kBase = 172, kTop = 26;
   const double digits = std::max({accuracy.alarm + 1.0, accuracy.largest + 0.5, 4.0});
@@ -172,7 +179,7 @@ std::string histogram(const LocalAccuracy& accuracy) {
         kind, kLeft + unit * from + 1, kBase - height, std::max(1.0, unit / 2 - 2), height, from, from + 0.5,
         counted(count, "equation"));
     svg += fmt::format("<text class=\"c-small\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"middle\">{}</text>\n",
-                       kLeft + unit * (from + 0.25), kBase - height - 4, grouped(count));
+                       kLeft + unit * (from + 0.25), kBase - height - 4, short_count(count));
   }
   svg += fmt::format("<path class=\"c-axis\" d=\"M{:.0f} {:.0f}H{:.0f}\"/>\n", kLeft, kBase, kWidth - kLeft);
   for (int d = 0; d <= static_cast<int>(digits); d += 2) {

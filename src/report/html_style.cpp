@@ -47,6 +47,7 @@ td, th { padding: .22rem .9rem .22rem 0; vertical-align: top; } .right { text-al
 table.inputs td:nth-child(2) { min-width: 8rem; } sub, sup { line-height: 0; } section.band p { margin: .2rem 0 .7rem; }
 td.bar { width: 34%; } td.bar i { display: block; height: .62rem; margin-top: .42rem; background: var(--blue); border-radius: 0 3px 3px 0; min-width: 2px; }
 code, .digest { font-family: ui-monospace, "DejaVu Sans Mono", Menlo, Consolas, monospace; font-size: .84rem; }
+.num { white-space: nowrap; }
 .cause { padding: .2rem 0 1.6rem; } .cause + .cause { border-top: 1px dashed var(--line); padding-top: 1.2rem; }
 .cause > header { display: flex; flex-wrap: wrap; gap: .2rem 1rem; align-items: baseline; }
 .cause h3 { margin: 0; font-size: 1.22rem; } .cause .tally { font-weight: 600; }
@@ -80,6 +81,7 @@ footer { border-top: 3px double var(--line); margin-top: .8rem; padding-top: .7r
   section.band { grid-template-columns: minmax(0, 1fr); } section.band > h2 { margin-bottom: .5rem; }
   .verdict { grid-template-columns: 2.8rem 1fr; gap: 0 .9rem; } .verdict svg { width: 2.8rem; height: 2.8rem; } .verdict .lead { font-size: 1.28rem; }
   table { display: block; overflow-x: auto; } .wide { overflow-x: auto; } .wide > svg.chart { min-width: 34rem; }
+  td.digest { min-width: 17rem; }
   .plates, .cause .columns { grid-template-columns: minmax(0, 1fr); } dl { grid-template-columns: 1fr; gap: 0; } dd { margin-bottom: .45rem; }
 }
 @media print {

@@ -1,5 +1,7 @@
 #include "report/markup.hpp"
 
+#include <algorithm>
+
 namespace stanchion {
 namespace {
 
@@ -25,7 +27,34 @@ std::size_t character_length(std::string_view text, std::size_t at) {
   return length;
 }
 
+/// The end of a number with a negative exponent, "1.33e-09", that starts at `at`; `at` where there is none.
+std::size_t end_of_number(std::string_view text, std::size_t at) {
+  const auto past = [&](const char* some, std::size_t from) {
+    return std::min(text.find_first_not_of(some, from), text.size());
+  };
+  const std::size_t exponent = past("0123456789.", at);
+  if (exponent == at || text.substr(exponent, 2) != "e-") return at;
+  const std::size_t end = past("0123456789", exponent + 2);
+  return end > exponent + 2 ? end : at;
+}
+
 }  // namespace
+
+std::string flowing(std::string_view text) {
+  std::string result;
+  std::size_t from = 0;
+  for (std::size_t at = 0; at < text.size();) {
+    const std::size_t end = end_of_number(text, at);
+    if (end == at) {
+      ++at;
+      continue;
+    }
+    result += escaped(text.substr(from, at - from)) + "<span class=\"num\">" +
+              escaped(text.substr(at, end - at)) + "</span>";
+    from = at = end;
+  }
+  return result + escaped(text.substr(from));
+}
 
 std::string escaped(std::string_view text) {
   std::string result;

@@ -9,4 +9,7 @@ namespace stanchion {
 /// & < > " ' as entities; control characters and bytes that are no UTF-8 as the replacement character.
 std::string escaped(std::string_view text);
 
+/// The same for running text of an HTML page; numbers with an exponent do not break at its sign.
+std::string flowing(std::string_view text);
+
 }  // namespace stanchion

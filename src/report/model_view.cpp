@@ -18,7 +18,8 @@ constexpr double kMotion = 0.11;                ///< of the model's size, drawn 
 constexpr double kCloseMotion = 0.32;           ///< of the close-up's radius
 constexpr double kCell = 2.6, kLinkCell = 2.0;  ///< pixels that hold one dot, or one end of a line
 constexpr std::size_t kMostLines = 16000, kMostArrows = 26, kCloseNodes = 18;
-constexpr double kApart = 46;  ///< pixels between arrows
+constexpr double kApart = 46;           ///< pixels between arrows
+constexpr std::size_t kDense = 60'000;  ///< nodes of a field; there are some 38,000 cells
 
 class Drawer {
  public:
@@ -352,9 +353,12 @@ std::string draw_field(const Picture& picture, const std::vector<float>& value, 
   std::string without;  // nodes that have no figure
   const double dot_width =
       std::clamp(0.6 * std::sqrt(kWidth * kHeight / static_cast<double>(order.size())), 3.2, 11.0);
+  const bool dense = order.size() > kDense;
   for (const std::size_t node : order) {
-    const Point p = to.at(picture.place[node]);
+    Point p = to.at(picture.place[node]);
     if (!seen.insert(cell_of(p, kCell)).second) continue;
+    // Where many nodes share a cell its middle stands for them: no streaks where two grids meet.
+    if (dense) p = {kCell * (std::floor(p.x / kCell) + 0.5), kCell * (std::floor(p.y / kCell) + 0.5)};
     if (value[node] < 0) {
       without += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
       continue;

@@ -58,6 +58,7 @@ void write_time(Page& page, const Outcome& outcome) {
   part("analyse", t.analyse);
   part("factor", t.factor);
   part("certify", t.certify);
+  if (outcome.located) part("locate", outcome.located->seconds);
   page.row("time", duration_in_words(t.total) + (parts.empty() ? "" : ": " + parts));
   std::string machine = counted(outcome.host.cores, "core");
   if (!outcome.host.isa.empty()) machine += ", " + outcome.host.isa;

@@ -57,6 +57,19 @@ void write_parts(Page& page, const LocateOutcome& located) {
   page.table(rows, 3);
 }
 
+void write_rigid_energies(Page& page, const LocateOutcome& located) {
+  std::vector<std::vector<std::string>> rows{{"part", "x", "y", "z", "turn x", "turn y", "turn z"}};
+  for (std::size_t k = 0; k < std::min(kPartsShown, located.components.size()); ++k) {
+    const auto& energies = located.components[k].rigid_energy;
+    if (!energies) continue;
+    rows.push_back({std::to_string(k + 1)});
+    for (const double e : *energies) rows.back().push_back(fmt::format("{:.1e}", e));
+  }
+  if (rows.size() == 1) return;
+  page.title("Rigid motions: energy over what the dofs have by themselves; about 1e-16 means free");
+  page.table(rows, 7);
+}
+
 void write_accuracy(Page& page, const LocateOutcome& located) {
   if (!located.accuracy && located.accuracy_note.empty()) return;
   page.title("Local accuracy: digits that double precision loses, of 16");
@@ -96,6 +109,7 @@ void write_locate(Page& page, const Outcome& outcome) {
   for (std::size_t k = 0; k < located.directions.size(); ++k)
     write_direction(page, located.directions[k], k + 1);
   write_parts(page, located);
+  write_rigid_energies(page, located);
   write_accuracy(page, located);
   if (located.mass) write_mass(page, *located.mass);
 }

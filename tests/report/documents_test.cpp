@@ -79,7 +79,9 @@ TEST(Html, SaysVerdictRiskDigitsAndCausesInTheWordsOfTheText) {
   outcome.risk_allowed = 1e-5;
   const std::string page = to_html(outcome, false, true);
   EXPECT_NE(page.find("K is indefinite: 1 negative direction, 8 zero directions"), std::string::npos);
-  EXPECT_NE(page.find("at most 1e-06 (allowed: 1e-05)"), std::string::npos);
+  const auto number = [](const std::string& text) { return "<span class=\"num\">" + text + "</span>"; };
+  EXPECT_NE(page.find("at most " + number("1e-06") + " (allowed: " + number("1e-05") + ")"),
+            std::string::npos);
   EXPECT_NE(page.find("count to 8 decimal digits"), std::string::npos);
   for (const Direction& direction : outcome.located->directions) {
     EXPECT_NE(page.find(direction.explanation), std::string::npos);
@@ -104,6 +106,12 @@ TEST(Markup, BadBytesAreReplaced) {
   EXPECT_EQ(escaped("\xC3\xA9"), "\xC3\xA9");
   EXPECT_EQ(escaped("\xC3("), "\xEF\xBF\xBD(");
   EXPECT_EQ(escaped("\xED\xA0\x80"), "\xEF\xBF\xBD\xEF\xBF\xBD\xEF\xBF\xBD");
+}
+
+TEST(Markup, NumbersWithAnExponentStayOnOneLine) {
+  EXPECT_EQ(flowing("at 1.33e-09. <6>"), "at <span class=\"num\">1.33e-09</span>. &lt;6&gt;");
+  EXPECT_EQ(flowing("2e-5"), "<span class=\"num\">2e-5</span>");
+  EXPECT_EQ(flowing("1e+10, e-9, 3e-, file-7.mtx & more"), "1e+10, e-9, 3e-, file-7.mtx &amp; more");
 }
 
 TEST(Csv, FieldsAreQuotedAsRfc4180Asks) {
