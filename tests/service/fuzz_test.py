@@ -3,6 +3,7 @@
 With STANCHION_LONG=1 50,000 requests, otherwise 4,000. Meant to run under sanitizers, too.
 """
 
+import copy
 import json
 import os
 import random
@@ -31,7 +32,7 @@ class Fuzz:
     def value(self, depth=0):
         if depth < 4 and self.dice.random() < 0.3:
             return {self.dice.choice(KEYS): self.value(depth + 1) for _ in range(self.dice.randrange(4))}
-        return self.dice.choice(VALUES)
+        return copy.deepcopy(self.dice.choice(VALUES))  # a request is changed further
 
     def request(self):
         request = {"command": self.dice.choice(["check", "count", "sweep", "locate", "audit", "forecast", "bracket"]),
