@@ -83,7 +83,7 @@ Status ScalarWorker<Scalar>::book_arena() {
 /// The children's blocks are in the front now. Returns the lowest place on this stack that is free again.
 template <class Scalar>
 double* ScalarWorker<Scalar>::release_children(Index front, double* storage) {
-  for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
+  for (const Index child : run_.analysis.tree.children(front)) {
     WaitingBlock& done = run_.waiting[static_cast<std::size_t>(child)];
     if (done.own.empty() && done.values != nullptr) storage = std::min(storage, done.values);
     if (!done.own.empty()) run_.memory.book(-done.own.size() * Offset{sizeof(double)});
@@ -115,8 +115,7 @@ ScalarElimination ScalarWorker<Scalar>::eliminate(const FrontRows& rows, const S
 
 template <class Scalar>
 Status ScalarWorker<Scalar>::process(Index front, ThreadPool* team) {
-  const FrontRows rows = list_rows(run_.analysis.tree, front, run_.children[static_cast<std::size_t>(front)],
-                                   run_.waiting, label_, local_of_);
+  const FrontRows rows = list_rows(run_.analysis.tree, front, run_.waiting, label_, local_of_);
   const BlockLayout layout = front_layout(rows.order);
   double* storage = arena_.push(ScalarBlock<Scalar>::doubles(layout));
   if (storage == nullptr) return run_.memory.limit_reached();

@@ -50,7 +50,6 @@ struct ScalarRun {
   const Analysis& analysis;
   const ShiftedMatrix& matrix;
   const FactorOptions& options;
-  std::vector<std::vector<Index>> children;  ///< of every front, in processing order
   std::vector<WaitingBlock> waiting;         ///< per front, until its parent is assembled
   MemoryLedger memory;
   ScalarProbe probe{};

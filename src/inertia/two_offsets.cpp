@@ -36,7 +36,7 @@ class OffsetScheme {
       : analysis_(analysis), matrix_(matrix), options_(options), pool_(pool), rows_(analysis.tree.rows) {}
 
   Result<CertifiedInertia> run() {
-    const double norm = infinity_norm(matrix_);
+    const double norm = infinity_norm(matrix_, &pool_);
     Certificate& certificate = found_.certificate;
     certificate.method = "offsets";
     certificate.precision = options_.extended ? "extended" : "double";

@@ -20,20 +20,22 @@ struct BlockSolver::Scratch {
 };
 
 BlockSolver::BlockSolver(const Analysis& analysis, const Factor& factor, ThreadPool& pool)
-    : analysis_(analysis), factor_(factor), pool_(pool), children_(children_of(analysis.tree)) {
-  passed_up_.resize(children_.size());
+    : analysis_(analysis), factor_(factor), pool_(pool) {
+  passed_up_.resize(static_cast<std::size_t>(analysis.tree.fronts));
   measure_paths();
 }
 
 void BlockSolver::measure_paths() {
-  std::vector<Index> path(children_.size(), 0);
-  for (std::size_t f = 0; f < children_.size(); ++f) {
+  const AssemblyTree& tree = analysis_.tree;
+  std::vector<Index> path(static_cast<std::size_t>(tree.fronts), 0);
+  for (std::size_t f = 0; f < path.size(); ++f) {
     const FactorFront& front = factor_.fronts[f];
+    const std::span<const Index> children = tree.children(static_cast<Index>(f));
     Index from_children = 0;
-    for (const Index child : children_[f])
+    for (const Index child : children)
       from_children = std::max(from_children, path[static_cast<std::size_t>(child)]);
     const Index tiles = front.pivots / kSolveTile + 2;
-    path[f] = std::max(from_children + static_cast<Index>(children_[f].size()), kSolveTile + 2) + tiles;
+    path[f] = std::max(from_children + static_cast<Index>(children.size()), kSolveTile + 2) + tiles;
     const Index backward = kSolveRows + front.order / kSolveRows + kSolveTile + tiles + 4;
     longest_path_ = std::max({longest_path_, path[f] + kSolveTile + 4, backward});
   }
@@ -45,7 +47,7 @@ void BlockSolver::forward_front(Index number, double* block, Scratch& scratch, T
   scratch.local.assign(static_cast<std::size_t>(m) * kV, 0.0);
   for (Index i = 0; i < m; ++i) scratch.local_of[static_cast<std::size_t>(front.position[i])] = i;
   double* x = scratch.local.data();
-  for (const Index child : children_[static_cast<std::size_t>(number)]) {
+  for (const Index child : analysis_.tree.children(number)) {
     const FactorFront& below = factor_.fronts[static_cast<std::size_t>(child)];
     auto& sums = passed_up_[static_cast<std::size_t>(child)];
     for (Index i = below.pivots; i < below.order; ++i) {

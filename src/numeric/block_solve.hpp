@@ -34,7 +34,6 @@ class BlockSolver {
   const Analysis& analysis_;
   const Factor& factor_;
   ThreadPool& pool_;
-  std::vector<std::vector<Index>> children_;
   std::vector<std::vector<double>>
       passed_up_;  ///< per front, its sums for rows below, until its parent takes them
   Index longest_path_ = 0;

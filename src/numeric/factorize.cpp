@@ -21,7 +21,6 @@ class Factorizer {
       : run_{analysis,
              matrix,
              options,
-             children_of(analysis.tree),
              {},
              nullptr,
              MemoryLedger(options.memory_cap_bytes)},
@@ -32,7 +31,7 @@ class Factorizer {
   Result<Factorization> run() {
     Stopwatch watch;
     Factorization result;
-    run_.probe = draw_fault_probe(run_.matrix, run_.options.seed);
+    run_.probe = draw_fault_probe(run_.matrix, run_.options.seed, &pool_);
     run_.memory.book(run_.probe.bytes());
     if (run_.options.keep_factor) {
       result.factor.emplace();

@@ -2,6 +2,7 @@
 
 #include <bit>
 #include <cmath>
+#include <vector>
 
 #include "base/counter_random.hpp"
 
@@ -34,28 +35,36 @@ Buffer<signed char> draw_signs(Index rows, std::uint64_t seed, double offset) {
   return sign;
 }
 
-FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed) {
+FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed, ThreadPool* pool) {
   const MatrixFamily& family = *matrix.family;
   FaultProbe probe{draw_signs(family.rows, seed, matrix.offset), Buffer<double>(family.rows, 0.0),
                    Buffer<double>(family.rows, 0.0)};
-  const auto add_to = [&](Index row, double term) {
-    probe.product[row] += term;
-    probe.product_error[row] += std::fabs(probe.product[row]);
-  };
-  for (Index j = 0; j < family.rows; ++j) {
-    const double sign_j = probe.sign[j];
-    TrackedSum column;
+  std::vector<TrackedSum> along_column(static_cast<std::size_t>(family.rows));
+  const auto for_entries = [&](Index j, const auto& use) {
     for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
       const Index i = family.row[k];
-      double value = matrix.entry(k, i, j);
-      if (i == j) value -= matrix.offset;
-      column.add(value * probe.sign[i]);
-      if (i != j) add_to(i, value * sign_j);
+      use(i, matrix.entry(k, i, j) - (i == j ? matrix.offset : 0.0));
     }
-    add_to(j, column.value);
-    probe.product_error[j] += column.sizes;
+  };
+  for_both_triangles(
+      pool, family.rows,
+      [&](Index j) {
+        TrackedSum sum;
+        for_entries(j, [&](Index i, double value) { sum.add(value * probe.sign[i]); });
+        along_column[static_cast<std::size_t>(j)] = sum;
+      },
+      [&](Index j) {
+        for_entries(j, [&](Index i, double value) {
+          if (i == j) return;
+          probe.product[i] += value * probe.sign[j];
+          probe.product_error[i] += std::fabs(probe.product[i]);
+        });
+      });
+  for (Index i = 0; i < family.rows; ++i) {
+    const TrackedSum& sum = along_column[static_cast<std::size_t>(i)];
+    probe.product[i] += sum.value;
+    probe.product_error[i] = (probe.product_error[i] + std::fabs(probe.product[i]) + sum.sizes) * kUnit;
   }
-  for (Index i = 0; i < family.rows; ++i) probe.product_error[i] *= kUnit;
   return probe;
 }
 

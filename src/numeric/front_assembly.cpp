@@ -115,7 +115,7 @@ Status FrontWorker<Scalar>::assemble(const FrontRows& rows, const BlockLowerOf<S
     std::fill(begin, begin + columns * layout.leading_dimension(b), Scalar{0});
   });
   add_matrix_entries(rows, matrix);
-  for (const Index child : run_.children[static_cast<std::size_t>(rows.front)]) {
+  for (const Index child : run_.analysis.tree.children(rows.front)) {
     add_contribution(run_.waiting[static_cast<std::size_t>(child)], matrix, team);
   }
   // Every addition to a row rounds a partial sum that is at most the sum of the addends' sizes.

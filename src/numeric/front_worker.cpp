@@ -81,8 +81,7 @@ Status FrontWorker<Scalar>::book_arena() {
 
 template <class Scalar>
 Status FrontWorker<Scalar>::process(Index front, ThreadPool* team) {
-  const FrontRows rows = list_rows(run_.analysis.tree, front, run_.children[static_cast<std::size_t>(front)],
-                                   run_.waiting, label_, local_of_);
+  const FrontRows rows = list_rows(run_.analysis.tree, front, run_.waiting, label_, local_of_);
   const BlockLayout layout = front_layout(rows.order);
   Scalar* storage = push(layout.size());
   if (storage == nullptr) return run_.memory.limit_reached();
@@ -92,10 +91,10 @@ Status FrontWorker<Scalar>::process(Index front, ThreadPool* team) {
 
   // The children's blocks are in the front now; those on this stack lie right below it.
   Scalar* base = storage;
-  for (const Index child : run_.children[static_cast<std::size_t>(front)]) {
+  for (const Index child : run_.analysis.tree.children(front)) {
     Contribution<Scalar>& done = run_.waiting[static_cast<std::size_t>(child)];
-    if (done.own.empty() && done.values != nullptr) base = std::min(base, done.values);
-    if (!done.own.empty()) run_.memory.book(-done.own.size() * Offset{sizeof(Scalar)});
+    if (!done.own && done.values != nullptr) base = std::min(base, done.values);
+    if (done.own) run_.memory.book(-contribution_numbers(done.order) * Offset{sizeof(Scalar)});
     done = Contribution<Scalar>{};
   }
   const auto candidates = static_cast<std::size_t>(rows.candidates);
@@ -265,10 +264,10 @@ Status FrontWorker<Scalar>::detach(Index front) {
   Contribution<Scalar>& block = run_.waiting[static_cast<std::size_t>(front)];
   if (block.values == nullptr) return {};
   const Offset numbers = contribution_numbers(block.order);
-  block.own = Buffer<Scalar>(numbers);
+  block.own = handed_on_.take<Scalar>(numbers);
   if (!run_.memory.book(numbers * Offset{sizeof(Scalar)})) return run_.memory.limit_reached();
-  std::memcpy(block.own.data(), block.values, static_cast<std::size_t>(numbers) * sizeof(Scalar));
-  block.place(block.own.data());
+  std::memcpy(block.own.get(), block.values, static_cast<std::size_t>(numbers) * sizeof(Scalar));
+  block.place(block.own.get());
   arena_.pop_to(arena_.top() - arena_.used());
   return {};
 }

@@ -2,10 +2,12 @@
 #pragma once
 
 #include <atomic>
+#include <memory>
 #include <type_traits>
 #include <vector>
 
 #include "base/arena.hpp"
+#include "base/shared_pages.hpp"
 #include "dense/eliminate.hpp"
 #include "numeric/factorization.hpp"
 #include "numeric/fault_probe.hpp"
@@ -25,7 +27,7 @@ struct Contribution {
   Scalar* image_error = nullptr;  ///< bound on the rounding of `image`
   Index order = 0;
   std::vector<Index> delayed;  ///< positions of the delayed columns
-  Buffer<Scalar> own;          ///< set when the block left its worker's stack
+  std::shared_ptr<Scalar> own;  ///< set when the block left its worker's stack
 
   /// Points into `numbers`, contribution_numbers(order) of them.
   void place(Scalar* numbers);
@@ -37,7 +39,6 @@ struct FactorRun {
   const Analysis& analysis;
   const ShiftedMatrix& matrix;
   const FactorOptions& options;
-  std::vector<std::vector<Index>> children;   ///< of every front, in processing order
   std::vector<Contribution<Scalar>> waiting;  ///< per front, until its parent is assembled
   Factor* factor = nullptr;                   ///< null: discard
   MemoryLedger memory;
@@ -99,6 +100,7 @@ class FrontWorker {
   FactorRun<Scalar>& run_;
   Arena arena_;
   Offset booked_doubles_ = 0;
+  SharedPages handed_on_;  ///< of blocks that left the stack
   EliminationScratchOf<Scalar> scratch_;
   Offset booked_scratch_ = 0;  ///< bytes
   Buffer<Index> local_of_;     ///< position -> row of the current front

@@ -55,6 +55,22 @@ void for_column_ranges(ThreadPool* pool, Index columns, const Buffer<Offset>& co
 /// How many ranges pay: one a thread, and one alone below some hundred thousand entries.
 int column_ranges(ThreadPool* pool, Offset entries);
 
+/// A symmetric product is sums along the columns, `upper(j)`, and what the entries below the diagonal add to
+/// other rows, `lower(j)`: both for all columns in order, by two threads of `pool` if there are any.
+template <class Upper, class Lower>
+void for_both_triangles(ThreadPool* pool, Index columns, const Upper& upper, const Lower& lower) {
+  if (pool == nullptr || pool->size() == 1) {
+    for (Index j = 0; j < columns; ++j) {
+      upper(j);
+      lower(j);
+    }
+    return;
+  }
+  pool->run(2, [&](Offset half, int) {
+    for (Index j = 0; j < columns; ++j) half == 0 ? upper(j) : lower(j);
+  });
+}
+
 /// S (sum_t coefficients[t] values[t]) S - offset I, with S = diag(2^scale_exponent).
 struct ShiftedMatrix {
   const MatrixFamily* family = nullptr;

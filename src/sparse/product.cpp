@@ -39,11 +39,30 @@ void multiply_absolute(const ShiftedMatrix& matrix, std::span<const double> x, s
   });
 }
 
-double infinity_norm(const ShiftedMatrix& matrix) {
-  const auto n = static_cast<std::size_t>(matrix.family->rows);
-  std::vector<double> ones(n, 1.0), sums(n);
-  multiply_absolute(matrix, ones, sums);
-  return sums.empty() ? 0 : *std::max_element(sums.begin(), sums.end());
+double infinity_norm(const ShiftedMatrix& matrix, ThreadPool* pool) {
+  const MatrixFamily& family = *matrix.family;
+  std::vector<double> lower(static_cast<std::size_t>(family.rows), 0.0), upper(lower.size());
+  const auto for_entries = [&](Index j, const auto& use) {
+    for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
+      const Index i = family.row[k];
+      use(i, std::fabs(matrix.entry(k, i, j) - (i == j ? matrix.offset : 0.0)));
+    }
+  };
+  for_both_triangles(
+      pool, family.rows,
+      [&](Index j) {
+        double sum = 0;
+        for_entries(j, [&](Index, double size) { sum += size; });
+        upper[static_cast<std::size_t>(j)] = sum;
+      },
+      [&](Index j) {
+        for_entries(j, [&](Index i, double size) {
+          if (i != j) lower[static_cast<std::size_t>(i)] += size;
+        });
+      });
+  double largest = 0;
+  for (std::size_t i = 0; i < lower.size(); ++i) largest = std::max(largest, lower[i] + upper[i]);
+  return largest;
 }
 
 }  // namespace stanchion

@@ -13,7 +13,7 @@ void multiply(const ShiftedMatrix& matrix, std::span<const double> x, std::span<
 /// y_i = sum_j |a_ij| |x_j|.
 void multiply_absolute(const ShiftedMatrix& matrix, std::span<const double> x, std::span<double> y);
 
-/// Largest row sum of |A|.
-double infinity_norm(const ShiftedMatrix& matrix);
+/// Largest row sum of |A|. Cost: one pass over the entries, half of it by each of two threads of `pool`.
+double infinity_norm(const ShiftedMatrix& matrix, ThreadPool* pool = nullptr);
 
 }  // namespace stanchion

@@ -133,7 +133,7 @@ class RowLists {
   RowLists(const Elimination& elimination, const VertexOrder& vertices, const AssemblyTree& tree)
       : graph_(elimination.graph),
         vertices_(vertices),
-        children_(children_of(tree)),
+        tree_(tree),
         list_of_(static_cast<std::size_t>(tree.fronts)) {}
 
   /// Lists fronts [first, end), children before parents, into `store`; children outside are listed already.
@@ -153,7 +153,7 @@ class RowLists {
           add(vertices_.place_of[graph_.adjacency[e]]);
         }
       }
-      for (const Index child : children_[static_cast<std::size_t>(f)]) {
+      for (const Index child : tree_.children(f)) {
         const List& below = list_of_[static_cast<std::size_t>(child)];
         for (std::size_t k = below.start; k < below.end; ++k) add((*below.store)[k]);
       }
@@ -190,7 +190,7 @@ class RowLists {
 
   const Graph& graph_;
   const VertexOrder& vertices_;
-  std::vector<std::vector<Index>> children_;
+  const AssemblyTree& tree_;
   std::vector<List> list_of_;
 };
 
@@ -233,6 +233,22 @@ void list_rows(const Elimination& elimination, const VertexOrder& vertices, Thre
 
 }  // namespace
 
+void link_children(AssemblyTree& tree) {
+  tree.child_start = Buffer<Index>(Offset{tree.fronts} + 1, 0);
+  Index linked = 0;
+  for (Index f = 0; f < tree.fronts; ++f) {
+    if (tree.parent[f] < 0) continue;
+    ++tree.child_start[Offset{tree.parent[f]} + 1];
+    ++linked;
+  }
+  for (Index f = 0; f < tree.fronts; ++f) tree.child_start[Offset{f} + 1] += tree.child_start[f];
+  tree.child = Buffer<Index>(linked);
+  Buffer<Index> next = tree.child_start.clone();
+  for (Index f = 0; f < tree.fronts; ++f) {
+    if (tree.parent[f] >= 0) tree.child[next[tree.parent[f]]++] = f;
+  }
+}
+
 AssemblyTree build_assembly_tree(const Elimination& elimination, const SupernodeTree& supernodes,
                                  ThreadPool* pool) {
   const auto rows = static_cast<Index>(elimination.grouping.group_of.size());
@@ -258,17 +274,10 @@ AssemblyTree build_assembly_tree(const Elimination& elimination, const Supernode
     tree.component[f] =
         elimination.component_of_vertex[supernodes.vertex_at[supernodes.positions[s].front()]];
   }
+  link_children(tree);
   const VertexOrder vertices = number_equations(elimination, supernodes, order, tree);
   list_rows(elimination, vertices, pool, tree);
   return tree;
-}
-
-std::vector<std::vector<Index>> children_of(const AssemblyTree& tree) {
-  std::vector<std::vector<Index>> children(static_cast<std::size_t>(tree.fronts));
-  for (Index f = 0; f < tree.fronts; ++f) {
-    if (tree.parent[f] >= 0) children[static_cast<std::size_t>(tree.parent[f])].push_back(f);
-  }
-  return children;
 }
 
 }  // namespace stanchion

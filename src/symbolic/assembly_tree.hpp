@@ -1,6 +1,8 @@
 // The assembly tree: fronts in the order they are processed, with the rows of each.
 #pragma once
 
+#include <span>
+
 #include "order/ordering.hpp"
 #include "symbolic/supernodes.hpp"
 
@@ -24,6 +26,8 @@ struct AssemblyTree {
   Buffer<Index> rows_below;  ///< positions below the pivots, ascending
   Buffer<Index> parent;      ///< front, -1 for a root
   Buffer<Index> component;   ///< connected part of each front
+  Buffer<Index> child_start;  ///< fronts + 1 places in `child`
+  Buffer<Index> child;        ///< the children of every front, in processing order
   Index components = 0;
 
   Index pivots(Index front) const { return first_column[Offset{front} + 1] - first_column[front]; }
@@ -31,10 +35,13 @@ struct AssemblyTree {
     return static_cast<Index>(row_start[Offset{front} + 1] - row_start[front]);
   }
   Index order(Index front) const { return pivots(front) + below(front); }
+  std::span<const Index> children(Index front) const {
+    return {child.data() + child_start[front], child.data() + child_start[Offset{front} + 1]};
+  }
 };
 
-/// The children of every front, in processing order.
-std::vector<std::vector<Index>> children_of(const AssemblyTree& tree);
+/// Lists the children of every front from their parents; build_assembly_tree has done so.
+void link_children(AssemblyTree& tree);
 
 /// Cost: linear in the row lists and the graph, plus sorting the lists. Where a pool is given its threads
 /// list the rows; the tree is the same.

@@ -96,6 +96,7 @@ TEST(Delays, TravelUpManyLevels) {
   tree.row_start[rows] = static_cast<Offset>(below.size());
   tree.rows_below = Buffer<Index>(static_cast<Offset>(below.size()));
   std::copy(below.begin(), below.end(), tree.rows_below.begin());
+  link_children(tree);
 
   test::Prepared prepared;
   prepared.pool = std::make_unique<ThreadPool>(1);
