@@ -54,12 +54,14 @@ double* Arena::push(Offset count) {
   return block;
 }
 
-void Arena::trim() {
+void Arena::trim(Offset kept) {
   constexpr std::uintptr_t kPage = 4096;
-  const auto begin = (reinterpret_cast<std::uintptr_t>(base_ + top_) + kPage - 1) / kPage * kPage;
+  const Offset stays = std::max(top_, kept);
+  if (stays >= high_water_) return;
+  const auto begin = (reinterpret_cast<std::uintptr_t>(base_ + stays) + kPage - 1) / kPage * kPage;
   const auto end = reinterpret_cast<std::uintptr_t>(base_ + high_water_);
   if (begin < end) madvise(reinterpret_cast<void*>(begin), end - begin, MADV_DONTNEED);
-  high_water_ = top_;
+  high_water_ = stays;
 }
 
 void Arena::pop_to(const double* mark) {

@@ -26,12 +26,14 @@ class Arena {
   /// Everything from `mark` up is free again.
   void pop_to(const double* mark);
 
-  /// Gives the pages above the top back to the system; high_water() starts again from there.
-  void trim();
+  /// Gives the pages above the top and above `kept` doubles back to the system; high_water() starts again from
+  /// the higher of the two, or stays below it.
+  void trim(Offset kept = 0);
 
   double* top() const { return base_ + top_; }
   Offset used() const { return top_; }
   Offset high_water() const { return high_water_; }
+  Offset capacity() const { return capacity_; }
 
  private:
   double* base_ = nullptr;

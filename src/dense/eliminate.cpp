@@ -340,7 +340,8 @@ class FrontEliminator {
   /// is in the upper part of the tile.
   void repack_inside(const Panel& panel, Index width, Index accepted) {
     const Index at = panel.next, rest = at + accepted, below = at + width, rows = panel.full_end - rest;
-    std::vector<Scalar> w(static_cast<std::size_t>(rows) * static_cast<std::size_t>(accepted));
+    std::vector<Scalar>& w = scratch_.repacked;
+    w.resize(std::max(w.size(), static_cast<std::size_t>(rows) * static_cast<std::size_t>(accepted)));
     const Index strip = kernels().column_strip;
     for (Index k = 0; k < accepted; ++k) {
       Scalar* target = w.data() + Offset{k} * rows;

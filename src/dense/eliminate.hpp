@@ -56,7 +56,7 @@ struct EliminationScratchOf {
   EliminatedColumnsOf<Scalar> beyond;  ///< rows beyond the current column block
   EliminatedColumnsOf<Scalar> inside;  ///< rows of the current column block below the current tile
   Buffer<Scalar> scaled;               ///< W = L D of pivots found by search
-  std::vector<Scalar> tile, inverse, factor, column_parts, sums;
+  std::vector<Scalar> tile, inverse, factor, column_parts, sums, repacked;
   std::vector<Scalar> no_fault_vector;  ///< zeros for a front without one
   std::vector<Index> permutation;
 

@@ -53,18 +53,7 @@ void update_trailing(const BlockLowerOf<Scalar>& front, EliminatedColumnsOf<Scal
                      Index column_begin, ThreadPool* team) {
   const BlockLayout& layout = front.layout;
   if (count == 0 || column_begin >= layout.order) return;
-  std::vector<Piece> pieces;
-  for (Index block = layout.block_of(column_begin); block < layout.blocks(); ++block) {
-    // A first block that starts inside a strip starts with the strip, whose rows before column_begin are
-    // zero.
-    const Index begin = std::max(layout.block_begin(block), columns.first_row()),
-                end = layout.block_end(block);
-    for (Index row = begin; row < layout.order; row += kPieceRows) {
-      pieces.push_back({begin, end, row, std::min(row + kPieceRows, layout.order)});
-    }
-  }
-  for_each_piece(team, static_cast<Offset>(pieces.size()), [&](Offset number) {
-    const Piece& piece = pieces[static_cast<std::size_t>(number)];
+  const auto update = [&](const Piece& piece) {
     const Index leading = layout.leading_dimension(layout.block_of(piece.column_begin));
     // Rows in runs whose strips stay in the second-level cache while the columns pass.
     for (Index row = piece.row_begin; row < piece.row_end; row += kFrontBlock) {
@@ -74,7 +63,24 @@ void update_trailing(const BlockLowerOf<Scalar>& front, EliminatedColumnsOf<Scal
           piece.column_end - piece.column_begin, row - piece.column_begin,
           std::max(0, column_begin - piece.column_begin), front.column(row, piece.column_begin), leading);
     }
-  });
+  };
+  std::vector<Piece> pieces;  // for a team; alone one after the other
+  for (Index block = layout.block_of(column_begin); block < layout.blocks(); ++block) {
+    // A first block that starts inside a strip starts with the strip, whose rows before column_begin are
+    // zero.
+    const Index begin = std::max(layout.block_begin(block), columns.first_row()),
+                end = layout.block_end(block);
+    for (Index row = begin; row < layout.order; row += kPieceRows) {
+      const Piece piece{begin, end, row, std::min(row + kPieceRows, layout.order)};
+      if (team == nullptr) {
+        update(piece);
+      } else {
+        pieces.push_back(piece);
+      }
+    }
+  }
+  for_each_piece(team, static_cast<Offset>(pieces.size()),
+                 [&](Offset number) { update(pieces[static_cast<std::size_t>(number)]); });
 }
 
 template class EliminatedColumnsOf<double>;

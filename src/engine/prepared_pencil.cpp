@@ -192,6 +192,7 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
       std::make_shared<RiskBudget>(request.risk, outcome.risk, static_cast<Index>(outcome.events.size()));
   pencil.seed_ = mixed_seed(request.seed, outcome.inputs);
   pencil.factor_options_.seed = pencil.seed_;
+  pencil.factor_options_.workspace = std::make_shared<FactorWorkspace>();
   pencil.factor_options_.progress = context.progress;
   pencil.factor_options_.cancel = context.cancel;
 

@@ -3,6 +3,7 @@
 
 #include <algorithm>
 #include <cstdint>
+#include <memory>
 #include <optional>
 #include <span>
 #include <vector>
@@ -17,6 +18,21 @@
 
 namespace stanchion {
 
+/// Memory that factorizations of one pattern leave for the next: a later shift allocates next to nothing. Safe
+/// to use by several factorizations at once, each of which then has its own part. What stays is bounded: some
+/// 32 MiB of stack a worker, none where the factor is kept.
+class FactorWorkspace {
+ public:
+  FactorWorkspace();
+  ~FactorWorkspace();
+
+  struct Parts;  ///< of factorize()
+  Parts& parts() { return *parts_; }
+
+ private:
+  std::unique_ptr<Parts> parts_;
+};
+
 struct FactorOptions {
   bool definite = false;      ///< no pivoting, stop at the first pivot that is not positive
   bool keep_factor = false;   ///< keep L and D for solves; otherwise panels are dropped once used
@@ -27,6 +43,7 @@ struct FactorOptions {
   ProgressCallback progress;
   const CancellationToken* cancel = nullptr;
   std::uint64_t seed = 1;  ///< of the signs that detect faults; the factors do not depend on it
+  std::shared_ptr<FactorWorkspace> workspace;  ///< null: memory of this factorization alone
 };
 
 /// One eliminated front: L (order x pivots, column-major, unit lower trapezoid), D, and the equations by

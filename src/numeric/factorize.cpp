@@ -12,6 +12,58 @@
 namespace stanchion {
 namespace {
 
+/// What one factorization works in.
+template <class Scalar>
+struct WorkingMemory {
+  std::vector<std::unique_ptr<FrontWorker<Scalar>>> workers;
+  std::unique_ptr<FrontWorker<Scalar>> shared;
+  std::vector<Contribution<Scalar>> waiting;
+};
+
+/// Sets that are free.
+template <class Scalar>
+class MemoryStock {
+ public:
+  std::unique_ptr<WorkingMemory<Scalar>> take() {
+    std::lock_guard lock(mutex_);
+    if (free_.empty()) return std::make_unique<WorkingMemory<Scalar>>();
+    auto taken = std::move(free_.back());
+    free_.pop_back();
+    return taken;
+  }
+  void give(std::unique_ptr<WorkingMemory<Scalar>> memory) {
+    std::lock_guard lock(mutex_);
+    free_.push_back(std::move(memory));
+  }
+
+ private:
+  std::mutex mutex_;
+  std::vector<std::unique_ptr<WorkingMemory<Scalar>>> free_;
+};
+
+}  // namespace
+
+struct FactorWorkspace::Parts {
+  MemoryStock<double> of_double;
+  MemoryStock<float> of_single;
+  template <class Scalar>
+  MemoryStock<Scalar>& stock() {
+    if constexpr (std::is_same_v<Scalar, double>) {
+      return of_double;
+    } else {
+      return of_single;
+    }
+  }
+};
+
+FactorWorkspace::FactorWorkspace() : parts_(std::make_unique<Parts>()) {}
+FactorWorkspace::~FactorWorkspace() = default;
+
+namespace {
+
+/// Stack that a worker keeps for the next factorization.
+constexpr Offset kKeptDoubles = (Offset{32} << 20) / Offset{sizeof(double)};
+
 /// Runs subtrees on single workers, then the shared fronts with everyone, and adds up what was counted.
 template <class Scalar>
 class Factorizer {
@@ -24,8 +76,21 @@ class Factorizer {
              {},
              nullptr,
              MemoryLedger(options.memory_cap_bytes)},
-        pool_(pool) {
+        pool_(pool),
+        memory_(options.workspace ? stock().take() : std::make_unique<WorkingMemory<Scalar>>()) {
+    run_.waiting = std::move(memory_->waiting);
     run_.waiting.resize(static_cast<std::size_t>(analysis.tree.fronts));
+    memory_->workers.resize(static_cast<std::size_t>(pool.size()));
+  }
+
+  ~Factorizer() {
+    for (auto& worker : memory_->workers) drop(worker);
+    drop(memory_->shared);
+    if (!run_.options.workspace) return;
+    // Blocks that nobody took, where the run ended early, go before the memory they may lie in.
+    if (run_.abandon || !status_.ok()) run_.waiting.clear();
+    memory_->waiting = std::move(run_.waiting);
+    stock().give(std::move(memory_));
   }
 
   Result<Factorization> run() {
@@ -41,8 +106,8 @@ class Factorizer {
     }
     result.component_signs.resize(static_cast<std::size_t>(run_.analysis.tree.components));
     run_waves(result);
-    for (auto& worker : workers_) collect(result, worker);
-    collect(result, shared_worker_);
+    for (auto& worker : memory_->workers) collect(result, worker);
+    collect(result, memory_->shared);
     if (!status_.ok()) return status_;
     result.error_bound *= run_.slack();
     result.unit_roundoff = Rounding<Scalar>::kUnit;
@@ -91,19 +156,21 @@ class Factorizer {
 
   void run_waves(Factorization& result) {
     const Schedule& schedule = run_.analysis.schedule;
-    workers_.resize(static_cast<std::size_t>(pool_.size()));
     for (const Wave& wave : schedule.waves) {
       run_subtrees(wave);
       if (!status_.ok() || run_.abandon) return;
       if (!schedule.keep_stacks) {
-        for (auto& worker : workers_) collect(result, worker);  // their stacks make room for the shared one
+        for (auto& worker : memory_->workers) {  // their stacks make room for the shared one
+          collect(result, worker);
+          worker.reset();
+        }
       }
       for (std::size_t k = wave.first_shared; k < wave.end_shared; ++k) {
-        if (!shared_worker_ && !start(shared_worker_, schedule.shared_arena_doubles)) return;
-        if (!step(*shared_worker_, schedule.shared_fronts[k], &pool_)) return;
+        if (!start(memory_->shared, schedule.shared_arena_doubles)) return;
+        if (!step(*memory_->shared, schedule.shared_fronts[k], &pool_)) return;
       }
-      if (shared_worker_ && !schedule.keep_stacks && &wave != &schedule.waves.back()) {
-        if (Status status = shared_worker_->trim(); !status.ok()) return fail(std::move(status));
+      if (memory_->shared && !schedule.keep_stacks && &wave != &schedule.waves.back()) {
+        if (Status status = memory_->shared->trim(); !status.ok()) return fail(std::move(status));
       }
     }
   }
@@ -119,9 +186,9 @@ class Factorizer {
     });
     pool_.run_sharing(static_cast<Offset>(by_size.size()), [&](Offset piece, int worker) {
       if (run_.abandon) return;
-      auto& mine = workers_[static_cast<std::size_t>(worker)];
+      auto& mine = memory_->workers[static_cast<std::size_t>(worker)];
       const Subtree& subtree = schedule.subtrees[by_size[static_cast<std::size_t>(piece)]];
-      if (!mine && !start(mine, schedule.worker_arena_doubles)) return;
+      if (!start(mine, schedule.worker_arena_doubles)) return;
       for (Index f = subtree.first; f < subtree.end; ++f) {
         const bool large =
             front_flops(run_.analysis.tree.order(f), run_.analysis.tree.pivots(f)) > kShareFlops;
@@ -136,9 +203,16 @@ class Factorizer {
     });
   }
 
+  /// Makes the worker ready for this run, if it is not yet.
   bool start(std::unique_ptr<FrontWorker<Scalar>>& worker, Offset arena_doubles) {
+    if (worker && worker->serves(run_)) return true;
+    const Index rows = run_.analysis.tree.rows;
     try {
-      worker = std::make_unique<FrontWorker<Scalar>>(run_, arena_doubles);
+      if (!worker || !worker->fits(rows, arena_doubles)) {
+        worker.reset();
+        worker = std::make_unique<FrontWorker<Scalar>>(rows, arena_doubles);
+      }
+      worker->begin(run_);
       return true;
     } catch (const std::bad_alloc&) {
       fail(Status::resource_limit("out-of-memory", "no address space for the stack of fronts", "",
@@ -147,18 +221,26 @@ class Factorizer {
     }
   }
 
-  /// Adds a worker's counts to the result, takes over what it kept, and lets it go.
-  static void collect(Factorization& result, std::unique_ptr<FrontWorker<Scalar>>& worker) {
-    if (!worker) return;
+  MemoryStock<Scalar>& stock() { return run_.options.workspace->parts().template stock<Scalar>(); }
+
+  /// Adds a worker's counts to the result and takes over the panels it kept; it serves no longer.
+  void collect(Factorization& result, std::unique_ptr<FrontWorker<Scalar>>& worker) {
+    if (!worker || !worker->serves(run_)) return;
     result.collect(*worker);
     if (result.factor) result.factor->memory.push_back(std::move(worker->kept_memory));
-    worker.reset();
+    drop(worker);
+  }
+
+  /// A worker that serves no longer stays for the next run where that is wanted.
+  void drop(std::unique_ptr<FrontWorker<Scalar>>& worker) {
+    if (!worker) return;
+    if (worker->serves(run_)) worker->finish(run_.options.keep_factor ? 0 : kKeptDoubles);
+    if (!run_.options.workspace) worker.reset();
   }
 
   FactorRun<Scalar> run_;
   ThreadPool& pool_;
-  std::vector<std::unique_ptr<FrontWorker<Scalar>>> workers_;
-  std::unique_ptr<FrontWorker<Scalar>> shared_worker_;
+  std::unique_ptr<WorkingMemory<Scalar>> memory_;
   std::mutex mutex_, progress_mutex_;
   Status status_;
 };

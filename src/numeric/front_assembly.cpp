@@ -39,15 +39,15 @@ void scatter_columns(const Contribution<Scalar>& child, const Index* map, const 
 
 template <class Scalar>
 void FrontWorker<Scalar>::add_matrix_entries(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix) {
-  const MatrixFamily& family = *run_.matrix.family;
-  const Index first = run_.analysis.tree.first_column[rows.front];
-  const double offset = run_.matrix.offset;
+  const MatrixFamily& family = *run_->matrix.family;
+  const Index first = run_->analysis.tree.first_column[rows.front];
+  const double offset = run_->matrix.offset;
   for (Index j = 0; j < rows.own; ++j) {
     const Index position = first + j;
     for (Offset k = family.column_start[position]; k < family.column_start[Offset{position} + 1]; ++k) {
       const Index row = family.row[k], i = local_of_[row];
-      double value = run_.matrix.entry(k, row, position);
-      double error = run_.matrix.entry_error(k, row, position);
+      double value = run_->matrix.entry(k, row, position);
+      double error = run_->matrix.entry_error(k, row, position);
       if (i == j && offset != 0) {
         value -= offset;
         error += kUnit * std::fabs(value);
@@ -70,7 +70,7 @@ void FrontWorker<Scalar>::add_matrix_entries(const FrontRows& rows, const BlockL
 template <class Scalar>
 void FrontWorker<Scalar>::add_contribution(const Contribution<Scalar>& child,
                                            const BlockLowerOf<Scalar>& matrix, ThreadPool* team) {
-  map_child_rows(run_.analysis.tree, static_cast<Index>(&child - run_.waiting.data()), child.delayed,
+  map_child_rows(run_->analysis.tree, static_cast<Index>(&child - run_->waiting.data()), child.delayed,
                  local_of_, map_);
   for (Index i = 0; i < child.order; ++i) {
     const auto to = static_cast<std::size_t>(map_[static_cast<std::size_t>(i)]);
@@ -106,7 +106,7 @@ Status FrontWorker<Scalar>::assemble(const FrontRows& rows, const BlockLowerOf<S
   image_.assign(order, 0);
   image_error_.assign(order, 0);
   sign_.resize(order);
-  for (std::size_t i = 0; i < order; ++i) sign_[i] = run_.probe.sign[label_[i]];
+  for (std::size_t i = 0; i < order; ++i) sign_[i] = run_->probe.sign[label_[i]];
   const BlockLayout& layout = matrix.layout;
   for_each_piece(team, layout.blocks(), [&](Offset block) {
     const auto b = static_cast<Index>(block);
@@ -115,8 +115,8 @@ Status FrontWorker<Scalar>::assemble(const FrontRows& rows, const BlockLowerOf<S
     std::fill(begin, begin + columns * layout.leading_dimension(b), Scalar{0});
   });
   add_matrix_entries(rows, matrix);
-  for (const Index child : run_.analysis.tree.children(rows.front)) {
-    add_contribution(run_.waiting[static_cast<std::size_t>(child)], matrix, team);
+  for (const Index child : run_->analysis.tree.children(rows.front)) {
+    add_contribution(run_->waiting[static_cast<std::size_t>(child)], matrix, team);
   }
   // Every addition to a row rounds a partial sum that is at most the sum of the addends' sizes.
   for (std::size_t i = 0; i < order; ++i)

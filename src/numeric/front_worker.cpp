@@ -55,18 +55,29 @@ void Contribution<Scalar>::place(Scalar* numbers) {
 }
 
 template <class Scalar>
-FrontWorker<Scalar>::FrontWorker(FactorRun<Scalar>& run, Offset arena_doubles)
-    : signs(static_cast<std::size_t>(run.analysis.tree.components)),
-      run_(run),
-      arena_(arena_doubles),
-      local_of_(run.analysis.tree.rows) {
-  run_.memory.book(local_of_.size() * Offset{sizeof(Index)});
+FrontWorker<Scalar>::FrontWorker(Index rows, Offset arena_doubles)
+    : arena_(arena_doubles), local_of_(rows) {}
+
+template <class Scalar>
+void FrontWorker<Scalar>::begin(FactorRun<Scalar>& run) {
+  run_ = &run;
+  signs.assign(static_cast<std::size_t>(run.analysis.tree.components), PivotSigns{});
+  largest_row_error = 0;
+  delayed_pivots = two_by_two_pivots = 0;
+  stopped = breakdown = false;
+  fault_row = -1;
+  kept_memory = PageStore{};
+  booked_doubles_ = booked_scratch_ = 0;
+  run.memory.book(local_of_.size() * Offset{sizeof(Index)});
 }
 
 template <class Scalar>
-FrontWorker<Scalar>::~FrontWorker() {
-  run_.memory.book(-booked_doubles_ * Offset{sizeof(double)} - booked_scratch_ -
-                   local_of_.size() * Offset{sizeof(Index)});
+void FrontWorker<Scalar>::finish(Offset kept_doubles) {
+  run_->memory.book(-booked_doubles_ * Offset{sizeof(double)} - booked_scratch_ -
+                    local_of_.size() * Offset{sizeof(Index)});
+  run_ = nullptr;
+  arena_.pop_to(arena_.top() - arena_.used());
+  arena_.trim(kept_doubles);
 }
 
 template <class Scalar>
@@ -76,25 +87,25 @@ Status FrontWorker<Scalar>::book_arena() {
   if (change == 0 && scratch == 0) return {};
   booked_doubles_ += change;
   booked_scratch_ += scratch;
-  return run_.memory.book(change * Offset{sizeof(double)} + scratch) ? Status{} : run_.memory.limit_reached();
+  return run_->memory.book(change * Offset{sizeof(double)} + scratch) ? Status{} : run_->memory.limit_reached();
 }
 
 template <class Scalar>
 Status FrontWorker<Scalar>::process(Index front, ThreadPool* team) {
-  const FrontRows rows = list_rows(run_.analysis.tree, front, run_.waiting, label_, local_of_);
+  const FrontRows rows = list_rows(run_->analysis.tree, front, run_->waiting, label_, local_of_);
   const BlockLayout layout = front_layout(rows.order);
   Scalar* storage = push(layout.size());
-  if (storage == nullptr) return run_.memory.limit_reached();
+  if (storage == nullptr) return run_->memory.limit_reached();
   if (Status booked = book_arena(); !booked.ok()) return booked;
   const BlockLowerOf<Scalar> matrix{layout, storage};
   if (Status assembled = assemble(rows, matrix, team); !assembled.ok()) return assembled;
 
   // The children's blocks are in the front now; those on this stack lie right below it.
   Scalar* base = storage;
-  for (const Index child : run_.analysis.tree.children(front)) {
-    Contribution<Scalar>& done = run_.waiting[static_cast<std::size_t>(child)];
+  for (const Index child : run_->analysis.tree.children(front)) {
+    Contribution<Scalar>& done = run_->waiting[static_cast<std::size_t>(child)];
     if (!done.own && done.values != nullptr) base = std::min(base, done.values);
-    if (done.own) run_.memory.book(-contribution_numbers(done.order) * Offset{sizeof(Scalar)});
+    if (done.own) run_->memory.book(-contribution_numbers(done.order) * Offset{sizeof(Scalar)});
     done = Contribution<Scalar>{};
   }
   const auto candidates = static_cast<std::size_t>(rows.candidates);
@@ -108,15 +119,15 @@ Status FrontWorker<Scalar>::process(Index front, ThreadPool* team) {
                              row_error_.data(),
                              growth_.data(),
                              {sign_.data(), image_.data(), image_error_.data()}};
-  const EliminationOptions options{run_.options.definite, run_.options.pivot_threshold,
-                                   run_.factor != nullptr};
+  const EliminationOptions options{run_->options.definite, run_->options.pivot_threshold,
+                                   run_->factor != nullptr};
   const EliminationResult result = eliminate_front(work, options, scratch_, team);
   if (Status booked = book_arena(); !booked.ok()) return booked;
-  const bool stuck = run_.analysis.tree.parent[front] < 0 && result.eliminated < rows.candidates;
+  const bool stuck = run_->analysis.tree.parent[front] < 0 && result.eliminated < rows.candidates;
   stopped = result.stopped;
   breakdown = result.not_finite || (stuck && !stopped);
   if (stopped || breakdown) {
-    run_.abandon = true;
+    run_->abandon = true;
     return {};
   }
   const double gamma =
@@ -126,7 +137,7 @@ Status FrontWorker<Scalar>::process(Index front, ThreadPool* team) {
   count_pivots(rows, result, gamma);
   two_by_two_pivots += result.two_by_two;
   delayed_pivots += rows.candidates - result.eliminated;
-  if (run_.factor != nullptr) {
+  if (run_->factor != nullptr) {
     if (Status kept = keep_panel(rows, matrix, result.eliminated); !kept.ok()) return kept;
   }
   pack(rows, matrix, result, gamma, base);
@@ -151,12 +162,12 @@ template <class Scalar>
 void FrontWorker<Scalar>::check_image(Index row, double bound) {
   const auto i = static_cast<std::size_t>(row);
   const Index position = label_[i];
-  const double allowed = run_.slack() * (bound + image_error_[i] + run_.probe.product_error[position]);
+  const double allowed = run_->slack() * (bound + image_error_[i] + run_->probe.product_error[position]);
   if (!std::isfinite(allowed)) {
     // Nothing can be told from an image that overflowed.
     breakdown = true;
-    run_.abandon = true;
-  } else if (!(std::fabs(run_.probe.product[position] - image_[i]) <= allowed)) {
+    run_->abandon = true;
+  } else if (!(std::fabs(run_->probe.product[position] - image_[i]) <= allowed)) {
     fault_row = fault_row < 0 ? position : std::min(fault_row, position);
   }
 }
@@ -165,7 +176,7 @@ template <class Scalar>
 void FrontWorker<Scalar>::count_pivots(const FrontRows& rows, const EliminationResult& result, double gamma) {
   const Index eliminated = result.eliminated;
   const SignCount count = sign_of_pivots({diagonal_.data(), off_diagonal_.data(), kind_.data()}, eliminated);
-  PivotSigns& total = signs[static_cast<std::size_t>(run_.analysis.tree.component[rows.front])];
+  PivotSigns& total = signs[static_cast<std::size_t>(run_->analysis.tree.component[rows.front])];
   total.negative += count.negative;
   total.zero += count.zero;
   total.positive += count.positive;
@@ -187,13 +198,13 @@ void FrontWorker<Scalar>::count_pivots(const FrontRows& rows, const EliminationR
 template <class Scalar>
 Status FrontWorker<Scalar>::keep_panel(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix,
                                        Index eliminated) {
-  FactorFront& kept = run_.factor->fronts[static_cast<std::size_t>(rows.front)];
+  FactorFront& kept = run_->factor->fronts[static_cast<std::size_t>(rows.front)];
   kept.pivots = eliminated;
   kept.order = rows.order;
   const Offset entries = Offset{rows.order} * eliminated;
-  const bool single = run_.options.store_single || sizeof(Scalar) == sizeof(float);
-  if (!run_.memory.book(entries * (single ? Offset{sizeof(float)} : Offset{sizeof(double)}))) {
-    return run_.memory.limit_reached();
+  const bool single = run_->options.store_single || sizeof(Scalar) == sizeof(float);
+  if (!run_->memory.book(entries * (single ? Offset{sizeof(float)} : Offset{sizeof(double)}))) {
+    return run_->memory.limit_reached();
   }
   if (single) {
     kept.lower_single = kept_memory.take<float>(entries);
@@ -232,7 +243,7 @@ void FrontWorker<Scalar>::pack(const FrontRows& rows, const BlockLowerOf<Scalar>
   const Index eliminated = result.eliminated, order = rows.order - eliminated;
   pop_to(destination);
   if (order == 0) return;
-  Contribution<Scalar>& out = run_.waiting[static_cast<std::size_t>(rows.front)];
+  Contribution<Scalar>& out = run_->waiting[static_cast<std::size_t>(rows.front)];
   out.order = order;
   out.delayed.assign(label_.begin() + eliminated, label_.begin() + rows.candidates);
   const BlockLayout layout = contribution_layout(order);
@@ -261,11 +272,11 @@ void FrontWorker<Scalar>::pack(const FrontRows& rows, const BlockLowerOf<Scalar>
 
 template <class Scalar>
 Status FrontWorker<Scalar>::detach(Index front) {
-  Contribution<Scalar>& block = run_.waiting[static_cast<std::size_t>(front)];
+  Contribution<Scalar>& block = run_->waiting[static_cast<std::size_t>(front)];
   if (block.values == nullptr) return {};
   const Offset numbers = contribution_numbers(block.order);
   block.own = handed_on_.take<Scalar>(numbers);
-  if (!run_.memory.book(numbers * Offset{sizeof(Scalar)})) return run_.memory.limit_reached();
+  if (!run_->memory.book(numbers * Offset{sizeof(Scalar)})) return run_->memory.limit_reached();
   std::memcpy(block.own.get(), block.values, static_cast<std::size_t>(numbers) * sizeof(Scalar));
   block.place(block.own.get());
   arena_.pop_to(arena_.top() - arena_.used());

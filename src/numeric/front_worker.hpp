@@ -53,12 +53,28 @@ struct FactorRun {
   }
 };
 
+/// Serves one factorization after another: begin(), fronts, finish(). What it holds of memory it keeps for the
+/// next.
 template <class Scalar>
 class FrontWorker {
  public:
-  FrontWorker(FactorRun<Scalar>& run, Offset arena_doubles);
-  ~FrontWorker();
+  /// For matrices of `rows` rows; the stack is sized for `arena_doubles`. Throws std::bad_alloc.
+  FrontWorker(Index rows, Offset arena_doubles);
   FrontWorker(FrontWorker&&) = delete;
+
+  /// True when it has room for that much.
+  bool fits(Index rows, Offset arena_doubles) const {
+    return local_of_.size() == rows && arena_.capacity() >= arena_doubles;
+  }
+
+  /// True between begin() and finish() for that run.
+  bool serves(const FactorRun<Scalar>& run) const { return run_ == &run; }
+
+  /// Sets the counts to nothing and books what is held. `run` must outlive finish().
+  void begin(FactorRun<Scalar>& run);
+
+  /// Ends the use of the run: nothing is on the stack any more, at most `kept_doubles` of it stay in memory.
+  void finish(Offset kept_doubles);
 
   /// Processes one front whose children are done. `team` null: on this thread alone.
   Status process(Index front, ThreadPool* team);
@@ -97,7 +113,7 @@ class FrontWorker {
   }
   void pop_to(const Scalar* mark) { arena_.pop_to(reinterpret_cast<const double*>(mark)); }
 
-  FactorRun<Scalar>& run_;
+  FactorRun<Scalar>* run_ = nullptr;
   Arena arena_;
   Offset booked_doubles_ = 0;
   SharedPages handed_on_;  ///< of blocks that left the stack

@@ -128,5 +128,27 @@ TEST(AllocationFailure, OneRefusedRequestInASolve) {
   expect_survives(refined, true, 1);
 }
 
+TEST(Allocation, ALaterShiftAllocatesNextToNothing) {
+  for (const int threads : {1, 2}) {
+    const auto prepared = test::prepare(test::laplacian(12, 12, 12), threads);
+    FactorOptions options;
+    options.workspace = std::make_shared<FactorWorkspace>();
+    const auto requests_of = [&](double offset, bool single) {
+      options.single = single;
+      const auto counter = FailingAllocator::never();
+      prepared.factor(offset, options);
+      return counter.requests();
+    };
+    for (const bool single : {false, true}) {
+      const long first = requests_of(0.1, single);
+      const long second = requests_of(0.15, single), third = requests_of(0.2, single);
+      EXPECT_GT(first, 100);
+      // The result itself, and per thread what hands the pieces of work out.
+      EXPECT_LE(second, 40) << threads << " threads; the first took " << first;
+      EXPECT_LE(third, 40);
+    }
+  }
+}
+
 }  // namespace
 }  // namespace stanchion

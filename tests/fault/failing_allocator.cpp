@@ -7,12 +7,12 @@
 namespace {
 
 std::atomic<bool> armed{false}, lasting_failure{false}, struck_once{false};
-std::atomic<long> requests{0}, fails_at{0}, live{0};
+std::atomic<long> requests_made{0}, fails_at{0}, live{0};
 std::atomic<std::size_t> spared_bytes{0};
 
 void* allocate(std::size_t size, std::size_t alignment) {
   if (armed.load(std::memory_order_relaxed)) {
-    const long number = requests.fetch_add(1);
+    const long number = requests_made.fetch_add(1);
     const long at = fails_at.load();
     if (lasting_failure ? number >= at && size > spared_bytes : number == at) {
       struck_once = true;
@@ -92,7 +92,7 @@ namespace stanchion::test {
 
 FailingAllocator::FailingAllocator(long which, bool lasting, std::size_t spared) {
   struck_once = false;
-  requests = 0;
+  requests_made = 0;
   fails_at = which;
   lasting_failure = lasting;
   spared_bytes = spared;
@@ -101,6 +101,10 @@ FailingAllocator::FailingAllocator(long which, bool lasting, std::size_t spared)
 
 FailingAllocator::~FailingAllocator() {
   armed = false;
+}
+
+long FailingAllocator::requests() const {
+  return requests_made.load();
 }
 
 bool FailingAllocator::struck() const {

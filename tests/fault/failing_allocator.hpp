@@ -14,10 +14,14 @@ class FailingAllocator {
   /// From the `which`-th on every request above `spared` bytes fails: memory has run out, error texts still
   /// fit.
   static FailingAllocator from_then_on(long which, std::size_t spared) { return {which, true, spared}; }
+  /// None fails; for counting.
+  static FailingAllocator never() { return FailingAllocator(-1, false, 0); }
   ~FailingAllocator();
   FailingAllocator(const FailingAllocator&) = delete;
   FailingAllocator& operator=(const FailingAllocator&) = delete;
 
+  /// Requests since this object was made.
+  long requests() const;
   /// Whether any request has failed since this object was made.
   bool struck() const;
 
