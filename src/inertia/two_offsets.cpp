@@ -7,6 +7,7 @@
 
 #include "base/fault_words.hpp"
 #include "extended/factorize.hpp"
+#include "inertia/factor_kind.hpp"
 #include "sparse/product.hpp"
 
 namespace stanchion {
@@ -15,6 +16,8 @@ namespace {
 /// First guesses of c over ||A_s||_inf: a few times the bounds usually seen, so that one factorization is
 /// enough.
 constexpr double kDefiniteGuess = 0x1p-40, kGeneralGuess = 0x1p-32;
+/// Where factors are thin, bounds are small, and eigenvalues lie close: a large c would leave some undecided.
+constexpr double kThinGuess = 0x1p-36;
 constexpr double kExtendedDefiniteGuess = 0x1p-88, kExtendedGeneralGuess = 0x1p-84;
 /// A retry takes this many times the bound just reported: a changed offset moves the bound a little.
 constexpr double kMargin = 2.0;
@@ -68,7 +71,8 @@ class OffsetScheme {
 
   double guess(bool definite) const {
     if (options_.extended) return definite ? kExtendedDefiniteGuess : kExtendedGeneralGuess;
-    return definite ? kDefiniteGuess : kGeneralGuess;
+    if (definite) return kDefiniteGuess;
+    return has_thin_factor(analysis_.forecast) ? kThinGuess : kGeneralGuess;
   }
 
   /// One factorization of A_s - offset I; its bound includes the data's own error.
