@@ -22,7 +22,8 @@ class SharedPages {
   template <class T>
   std::shared_ptr<T> take(Offset count) {
     static_assert(std::is_trivially_copyable_v<T> && alignof(T) <= kAlign);
-    if (count < 0 || static_cast<std::size_t>(count) > std::numeric_limits<std::size_t>::max() / 4 / sizeof(T))
+    if (count < 0 ||
+        static_cast<std::size_t>(count) > std::numeric_limits<std::size_t>::max() / 4 / sizeof(T))
       throw std::bad_alloc();
     const std::size_t bytes = (static_cast<std::size_t>(count) * sizeof(T) + kAlign - 1) / kAlign * kAlign;
     if (page_.use_count() == 1) used_ = 0;
@@ -33,7 +34,8 @@ class SharedPages {
   }
 
  private:
-  static constexpr std::size_t kAlign = 64, kFirstPage = std::size_t{128} << 10, kLastPage = std::size_t{2} << 20;
+  static constexpr std::size_t kAlign = 64, kFirstPage = std::size_t{128} << 10,
+                               kLastPage = std::size_t{2} << 20;
 
   void open(std::size_t bytes) {
     // A sanitizer watches the ends of every block.

@@ -6,6 +6,7 @@
 namespace stanchion {
 namespace {
 
+constexpr Index kWorthAnotherPass = 64;    ///< another pass if the last one took more than one of so many
 constexpr Index kPieceRows = kFrontBlock;  ///< rows beyond the panel handled as one piece
 // Parts of the sums over columns of a tile: of |L|, of |A21|, of L with the signs of the fault vector; the
 // largest |w|.
@@ -47,18 +48,16 @@ class FrontEliminator {
   }
 
   EliminationResult run() {
-    Index done = 0, limit = front_.candidates;  // [limit, candidates) failed and wait for the search
-    while (done < limit) {
-      const Index block = layout_.block_of(done);
-      const Index panel_end = std::min(layout_.block_end(block), limit);
-      Panel panel{done, panel_end, done, panel_end};
-      beyond_.reset(strip_begin<Scalar>(panel_end), layout_.order, panel_end - done);
-      if (!take_pivots(panel)) return result_;
-      update_beyond(panel);
-      done = panel.next;
-      limit = set_aside_failed(done, panel_end, limit);
+    Index done = 0, limit = front_.candidates;
+    for (Index before = -1;; before = done) {
+      if (!take_panels(done, limit)) return result_;
+      // What failed is tried again beside its partners while that takes a good part of it.
+      const Index left = front_.candidates - done;
+      if (left == 0 || (before >= 0 && done - before <= left / kWorthAnotherPass)) break;
+      limit = pair_up(done);
+      if (limit == done) break;
     }
-    result_.additions = additions_beyond_ + most_in_panel_;
+    result_.additions = additions_beyond_ + additions_inside_;
     result_.image_additions += std::min(front_.candidates, kTileWidth);  // in the row's own tile
     result_.eliminated = done;
     if (done < front_.candidates) {
@@ -77,6 +76,57 @@ class FrontEliminator {
   PivotArrays pivots_at(Index column) const {
     return {front_.pivots.diagonal + column, front_.pivots.off_diagonal + column,
             front_.pivots.kind + column};
+  }
+
+  /// Takes panels from column `done` on until all columns before `limit` are pivots or have failed; those are
+  /// at the end. False: stopped or not finite.
+  bool take_panels(Index& done, Index limit) {
+    most_in_panel_ = 0;
+    while (done < limit) {
+      const Index block = layout_.block_of(done);
+      const Index panel_end = std::min(layout_.block_end(block), limit);
+      Panel panel{done, panel_end, done, panel_end};
+      beyond_.reset(strip_begin<Scalar>(panel_end), layout_.order, panel_end - done);
+      if (!take_pivots(panel)) return false;
+      update_beyond(panel);
+      done = panel.next;
+      limit = set_aside_failed(done, panel_end, limit);
+    }
+    additions_inside_ += most_in_panel_;
+    return true;
+  }
+
+  /// Puts candidates from `from` on that could be pivots by their own column in front: with a diagonal entry
+  /// that is large enough, or each beside the candidate with its largest entry. Returns the end of them; the
+  /// others have no partner left among the candidates.
+  Index pair_up(Index from) {
+    const double limit = 1 / options_.threshold;
+    const auto entry = [&](Index i, Index j) {
+      return std::fabs(i >= j ? front_.matrix.at(i, j) : front_.matrix.at(j, i));
+    };
+    Index end = front_.candidates;
+    for (Index j = from; j < end;) {
+      Scalar largest = 0, candidate = 0;
+      Index partner = -1;
+      for (Index i = from; i < layout_.order; ++i) {
+        if (i == j) continue;
+        const Scalar size = entry(i, j);
+        largest = std::max(largest, size);
+        if (i > j && i < end && size > candidate) {
+          candidate = size;
+          partner = i;
+        }
+      }
+      if (entry(j, j) > 0 && largest <= limit * entry(j, j)) {
+        ++j;
+      } else if (partner >= 0 && largest <= limit * candidate) {
+        swap_symmetric(front_, j + 1, partner, first_live(from));
+        j += 2;
+      } else {
+        swap_symmetric(front_, j, --end, first_live(from));
+      }
+    }
+    return end;
   }
 
   /// Takes tiles until every column of the panel is a pivot or has failed. False: stopped or not finite.
@@ -456,7 +506,8 @@ class FrontEliminator {
   EliminationResult result_;
   Scalar weight_[kTileWidth], step_[kTileWidth];  ///< |D| |L|^T e and D L^T x of the current tile
   Index additions_beyond_ = 0;                    ///< to entries beyond the panels, over all panels
-  Index most_in_panel_ = 0;                       ///< to entries of one panel, by its own tiles
+  Index most_in_panel_ = 0;                       ///< to entries of one panel, by its own tiles, of this pass
+  Index additions_inside_ = 0;                    ///< the same over all passes
 };
 
 }  // namespace

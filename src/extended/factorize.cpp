@@ -23,8 +23,7 @@ class ScalarFactorizer {
  public:
   ScalarFactorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
                    ThreadPool& pool)
-      : run_{analysis, matrix, options, {}, MemoryLedger(options.memory_cap_bytes)},
-        pool_(pool) {
+      : run_{analysis, matrix, options, {}, MemoryLedger(options.memory_cap_bytes)}, pool_(pool) {
     run_.waiting.resize(static_cast<std::size_t>(analysis.tree.fronts));
   }
 

@@ -158,8 +158,7 @@ void ScalarWorker<Scalar>::assemble(const FrontRows& rows, const ScalarBlock<Sca
   for (const Index position : label_) sign_.push_back(run_.probe.sign[position]);
   std::fill_n(matrix.data, ScalarBlock<Scalar>::doubles(matrix.layout), 0.0);
   add_matrix_entries(rows, matrix);
-  for (const Index child : run_.analysis.tree.children(rows.front))
-    add_contribution(child, matrix, team);
+  for (const Index child : run_.analysis.tree.children(rows.front)) add_contribution(child, matrix, team);
   // Every addition to a row rounds a partial sum that is at most the sum of the addends' sizes.
   for (std::size_t i = 0; i < order; ++i)
     row_error_[i] += kUnit * static_cast<double>(addends_[i]) * addend_sums_[i];

@@ -50,7 +50,7 @@ struct ScalarRun {
   const Analysis& analysis;
   const ShiftedMatrix& matrix;
   const FactorOptions& options;
-  std::vector<WaitingBlock> waiting;         ///< per front, until its parent is assembled
+  std::vector<WaitingBlock> waiting;  ///< per front, until its parent is assembled
   MemoryLedger memory;
   ScalarProbe probe{};
   std::atomic<bool> abandon{false};  ///< a worker stopped, broke down, failed or was cancelled

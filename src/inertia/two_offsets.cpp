@@ -72,7 +72,7 @@ class OffsetScheme {
   double guess(bool definite) const {
     if (options_.extended) return definite ? kExtendedDefiniteGuess : kExtendedGeneralGuess;
     if (definite) return kDefiniteGuess;
-    return has_thin_factor(analysis_.forecast) ? kThinGuess : kGeneralGuess;
+    return has_thin_factor(analysis_) ? kThinGuess : kGeneralGuess;
   }
 
   /// One factorization of A_s - offset I; its bound includes the data's own error.

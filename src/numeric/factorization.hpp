@@ -18,9 +18,9 @@
 
 namespace stanchion {
 
-/// Memory that factorizations of one pattern leave for the next: a later shift allocates next to nothing. Safe
-/// to use by several factorizations at once, each of which then has its own part. What stays is bounded: some
-/// 32 MiB of stack a worker, none where the factor is kept.
+/// Memory that factorizations of one pattern leave for the next: a later shift allocates next to nothing.
+/// Safe to use by several factorizations at once, each of which then has its own part. What stays is bounded:
+/// some 32 MiB of stack a worker, none where the factor is kept.
 class FactorWorkspace {
  public:
   FactorWorkspace();

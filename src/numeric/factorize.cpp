@@ -70,12 +70,7 @@ class Factorizer {
  public:
   Factorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
              ThreadPool& pool)
-      : run_{analysis,
-             matrix,
-             options,
-             {},
-             nullptr,
-             MemoryLedger(options.memory_cap_bytes)},
+      : run_{analysis, matrix, options, {}, nullptr, MemoryLedger(options.memory_cap_bytes)},
         pool_(pool),
         memory_(options.workspace ? stock().take() : std::make_unique<WorkingMemory<Scalar>>()) {
     run_.waiting = std::move(memory_->waiting);

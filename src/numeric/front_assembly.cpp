@@ -17,20 +17,18 @@ template <class Scalar>
 void scatter_columns(const Contribution<Scalar>& child, const Index* map, const Index* run_end,
                      const BlockLowerOf<Scalar>& front, Index begin, Index end) {
   const BlockLowerOf<Scalar> from{contribution_layout(child.order), child.values};
-  const bool ascending = child.delayed.empty();
   for (Index j = begin; j < end; ++j) {
     const Scalar* source = from.column(j, j) - j;
     const Index to = map[j];
-    if (ascending) {
-      Scalar* column = front.column(to, to) - to;
-      for (Index i = j; i < child.order;) {
-        const Index stop = run_end[i];
+    Scalar* column = front.column(to, to) - to;
+    for (Index i = j; i < child.order;) {
+      const Index stop = run_end[i];
+      if (map[i] >= to) {
         Scalar* target = column + (map[i] - i);
         for (; i < stop; ++i) target[i] += source[i];
+      } else {  // a delayed column goes behind the pivots of the front
+        for (; i < stop; ++i) front.at(to, map[i]) += source[i];
       }
-    } else {
-      for (Index i = j; i < child.order; ++i)
-        front.at(std::max(map[i], to), std::min(map[i], to)) += source[i];
     }
   }
 }

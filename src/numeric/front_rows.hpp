@@ -19,7 +19,8 @@ struct FrontRows {
 /// Lists the positions of the rows of `front` in `label`, and sets local_of[position] to the row of each.
 /// `waiting`: per front, with the positions its `delayed` columns have.
 template <class Waiting>
-FrontRows list_rows(const AssemblyTree& tree, Index front, const std::vector<Waiting>& waiting, std::vector<Index>& label, Buffer<Index>& local_of) {
+FrontRows list_rows(const AssemblyTree& tree, Index front, const std::vector<Waiting>& waiting,
+                    std::vector<Index>& label, Buffer<Index>& local_of) {
   FrontRows rows{front, tree.pivots(front), 0, 0};
   label.clear();
   for (Index k = tree.first_column[front]; k < tree.first_column[Offset{front} + 1]; ++k) label.push_back(k);

@@ -55,8 +55,7 @@ void Contribution<Scalar>::place(Scalar* numbers) {
 }
 
 template <class Scalar>
-FrontWorker<Scalar>::FrontWorker(Index rows, Offset arena_doubles)
-    : arena_(arena_doubles), local_of_(rows) {}
+FrontWorker<Scalar>::FrontWorker(Index rows, Offset arena_doubles) : arena_(arena_doubles), local_of_(rows) {}
 
 template <class Scalar>
 void FrontWorker<Scalar>::begin(FactorRun<Scalar>& run) {
@@ -87,7 +86,8 @@ Status FrontWorker<Scalar>::book_arena() {
   if (change == 0 && scratch == 0) return {};
   booked_doubles_ += change;
   booked_scratch_ += scratch;
-  return run_->memory.book(change * Offset{sizeof(double)} + scratch) ? Status{} : run_->memory.limit_reached();
+  return run_->memory.book(change * Offset{sizeof(double)} + scratch) ? Status{}
+                                                                      : run_->memory.limit_reached();
 }
 
 template <class Scalar>

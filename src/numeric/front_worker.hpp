@@ -26,7 +26,7 @@ struct Contribution {
   Scalar* image = nullptr;        ///< shares of L D L^T x from the pivots so far
   Scalar* image_error = nullptr;  ///< bound on the rounding of `image`
   Index order = 0;
-  std::vector<Index> delayed;  ///< positions of the delayed columns
+  std::vector<Index> delayed;   ///< positions of the delayed columns
   std::shared_ptr<Scalar> own;  ///< set when the block left its worker's stack
 
   /// Points into `numbers`, contribution_numbers(order) of them.
@@ -53,8 +53,8 @@ struct FactorRun {
   }
 };
 
-/// Serves one factorization after another: begin(), fronts, finish(). What it holds of memory it keeps for the
-/// next.
+/// Serves one factorization after another: begin(), fronts, finish(). What it holds of memory it keeps for
+/// the next.
 template <class Scalar>
 class FrontWorker {
  public:

@@ -22,10 +22,10 @@ struct AssemblyTree {
   Buffer<Index> equation_at;  ///< its inverse
   Buffer<Index>
       first_column;  ///< fronts + 1 positions: front f eliminates [first_column[f], first_column[f+1])
-  Buffer<Offset> row_start;  ///< fronts + 1 offsets into rows_below
-  Buffer<Index> rows_below;  ///< positions below the pivots, ascending
-  Buffer<Index> parent;      ///< front, -1 for a root
-  Buffer<Index> component;   ///< connected part of each front
+  Buffer<Offset> row_start;   ///< fronts + 1 offsets into rows_below
+  Buffer<Index> rows_below;   ///< positions below the pivots, ascending
+  Buffer<Index> parent;       ///< front, -1 for a root
+  Buffer<Index> component;    ///< connected part of each front
   Buffer<Index> child_start;  ///< fronts + 1 places in `child`
   Buffer<Index> child;        ///< the children of every front, in processing order
   Index components = 0;

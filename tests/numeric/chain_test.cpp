@@ -39,6 +39,7 @@ test::Prepared arrow_chain(Index links, double coupling, double border, int thre
     tree.parent[f] = f < links ? f + 1 : -1;
   }
   tree.equation_at = tree.position_of.clone();
+  link_children(tree);
   prepared.analysis.schedule = make_schedule(tree, threads);
   const std::array<const SymmetricMatrix*, 1> members{&matrix};
   prepared.family = permute(unite(members), tree.position_of);
