@@ -49,18 +49,23 @@ class FrontEliminator {
 
   EliminationResult run() {
     Index done = 0, limit = front_.candidates;
+    bool search_may_help = true;
     for (Index before = -1;; before = done) {
       if (!take_panels(done, limit)) return result_;
       // What failed is tried again beside its partners while that takes a good part of it.
       const Index left = front_.candidates - done;
       if (left == 0 || (before >= 0 && done - before <= left / kWorthAnotherPass)) break;
+      zero_columns_ = false;
       limit = pair_up(done);
-      if (limit == done) break;
+      if (limit == done) {  // nor would the search find a partner; at a root it makes do with less
+        search_may_help = zero_columns_ || front_.candidates == layout_.order;
+        break;
+      }
     }
     result_.additions = additions_beyond_ + additions_inside_;
     result_.image_additions += std::min(front_.candidates, kTileWidth);  // in the row's own tile
     result_.eliminated = done;
-    if (done < front_.candidates) {
+    if (done < front_.candidates && search_may_help) {
       result_.eliminated = eliminate_by_search(front_, done, options_, scratch_, team_, result_);
     }
     return result_;
@@ -123,6 +128,7 @@ class FrontEliminator {
         swap_symmetric(front_, j + 1, partner, first_live(from));
         j += 2;
       } else {
+        zero_columns_ = zero_columns_ || (largest == 0 && entry(j, j) == 0);
         swap_symmetric(front_, j, --end, first_live(from));
       }
     }
@@ -507,6 +513,7 @@ class FrontEliminator {
   Scalar weight_[kTileWidth], step_[kTileWidth];  ///< |D| |L|^T e and D L^T x of the current tile
   Index additions_beyond_ = 0;                    ///< to entries beyond the panels, over all panels
   Index most_in_panel_ = 0;                       ///< to entries of one panel, by its own tiles, of this pass
+  bool zero_columns_ = false;                     ///< pair_up() has met columns that vanish
   Index additions_inside_ = 0;                    ///< the same over all passes
 };
 
