@@ -27,10 +27,6 @@ void add_deciding_runs(const Certificate& certificate, const Asked& at, std::vec
   }
 }
 
-double coefficient_at(const Request& request, double shift) {
-  return request.pencil == Pencil::kGeometric && !request.input.load_sign_minus ? shift : -shift;
-}
-
 /// True when a row of the mass holds nothing.
 bool some_massless(const ModelInput& model) {
   std::vector<char> present(static_cast<std::size_t>(model.stiffness.rows), 0);
@@ -57,7 +53,7 @@ std::vector<Asked> list_of(const Request& request, const Outcome& claimed, bool 
   if (claimed.check) add(claimed.check->certificate, {{}, 0, 0, claimed.check->inertia.negative}, true);
   if (claimed.count) {
     for (const ShiftCount& count : claimed.count->counts) {
-      const double factor = coefficient_at(request, count.shift);
+      const double factor = second_factor(request, count.shift);
       add(count.certificate, {count.shift, factor, 0, count.below.value_or(0)},
           relative_counts && count.below.has_value());
     }

@@ -369,8 +369,7 @@ std::string PencilCounter::meaning_on_all(double shift) const {
 }
 
 double PencilCounter::factor_of(double shift) const {
-  if (request_.pencil == Pencil::kGeometric) return request_.input.load_sign_minus ? -shift : shift;
-  return -shift;
+  return second_factor(request_, shift);
 }
 
 Result<CertifiedInertia> PencilCounter::inertia_at(double shift, bool definite_first) {

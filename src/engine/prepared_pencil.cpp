@@ -13,6 +13,7 @@
 #include "extended/factorize.hpp"
 #include "jobs/analysis_store.hpp"
 #include "model/not_checked.hpp"
+#include "order/weak_diagonal.hpp"
 #include "sparse/product.hpp"
 #include "sparse/scaling.hpp"
 
@@ -80,7 +81,8 @@ bool same_pattern(const SymmetricMatrix& pattern, const SharedAnalysis& shared) 
 
 /// The one of the matrix before, where the pattern is the same; else a new one, kept in mind for the next.
 Result<Analysis> analysis_of(const SymmetricMatrix& pattern, const std::vector<Index>& nodes,
-                             const Request& request, int workers, SharedAnalysis* shared) {
+                             std::span<const char> weak, const Request& request, int workers,
+                             SharedAnalysis* shared) {
   if (shared != nullptr && shared->analysis && same_pattern(pattern, *shared)) {
     ++shared->reused;
     Analysis analysis = std::move(*shared->analysis);
@@ -95,10 +97,10 @@ Result<Analysis> analysis_of(const SymmetricMatrix& pattern, const std::vector<I
   }
   // A second opinion owes nothing to what the first has left.
   if (!request.analysis_store || request.second_path) {
-    return analyse({&pattern, nodes, true, request.second_path}, workers);
+    return analyse({&pattern, nodes, true, request.second_path, nullptr, 1, weak}, workers);
   }
   AnalysisStore store(*request.analysis_store);
-  return analyse({&pattern, nodes, true, false, &store}, workers);
+  return analyse({&pattern, nodes, true, false, &store, 1, weak}, workers);
 }
 
 Status check_cap(const Request& request, Offset needed) {
@@ -115,6 +117,10 @@ Status check_cap(const Request& request, Offset needed) {
 
 Offset with_allowance(Offset bytes) {
   return bytes + bytes / 10 + (Offset{2} << 20);
+}
+
+double second_factor(const Request& request, double shift) {
+  return request.pencil == Pencil::kGeometric && !request.input.load_sign_minus ? shift : -shift;
 }
 
 int threads_of(const Request& request) {
@@ -160,11 +166,15 @@ Result<PreparedPencil> PreparedPencil::make(ModelInput& model, bool with_identit
   model.second.reset();
   model.added.clear();
   unit.reset();
+  // A single shift may ask for pairs; an order for many serves none of them alone.
+  std::vector<char> weak;
+  if (pencil.has_second_ && request.shifts.size() == 1)
+    weak = weak_diagonals(family, pencil.combination(second_factor(request, request.shifts[0])).coefficients);
   // The ordering reads the pattern and which diagonals are zero; the first member's values serve for that.
   SymmetricMatrix pattern{family.rows, std::move(family.column_start), std::move(family.row),
                           std::move(family.values[0])};
   const std::vector<Index> nodes = nodes_of(model.dofs, family.rows);
-  auto analysis = analysis_of(pattern, nodes, request, pool.size(), shared);
+  auto analysis = analysis_of(pattern, nodes, weak, request, pool.size(), shared);
   if (!analysis.ok()) return analysis.status();
   if (context.cancel != nullptr && context.cancel->cancelled()) return Status::interrupted();
   pencil.analysis_ = std::move(*analysis);

@@ -153,12 +153,13 @@ Result<Buffer<Index>> order_or_recall(const Graph& graph, const Components& comp
   return order;
 }
 
-std::vector<char> zero_diagonals(const SymmetricMatrix& pattern) {
+/// Rows whose diagonal is zero, or `weak`.
+std::vector<char> zero_diagonals(const SymmetricMatrix& pattern, std::span<const char> weak) {
   std::vector<char> zero(static_cast<std::size_t>(pattern.rows), 1);
   for (Index j = 0; j < pattern.rows; ++j) {
     const Offset first = pattern.column_start[j];
     if (first < pattern.column_start[Offset{j} + 1] && pattern.row[first] == j && pattern.value[first] != 0) {
-      zero[static_cast<std::size_t>(j)] = 0;
+      zero[static_cast<std::size_t>(j)] = weak.empty() ? 0 : weak[static_cast<std::size_t>(j)];
     }
   }
   return zero;
@@ -184,7 +185,7 @@ auto begin(bool in_background, const Work& work) {
 
 Result<Elimination> order_equations(const OrderingInput& input) {
   const SymmetricMatrix& pattern = *input.pattern;
-  const std::vector<char> zero = zero_diagonals(pattern);
+  const std::vector<char> zero = zero_diagonals(pattern, input.weak_diagonal);
   const bool joins = input.zero_diagonals_join && std::find(zero.begin(), zero.end(), 1) != zero.end();
   const bool nodes_known = !input.node_of.empty();
   const bool coarsens = nodes_known || joins;  // else the graph that is ordered is the exact one

@@ -17,6 +17,7 @@ struct OrderingInput {
   bool other_order = false;                  ///< minimum degree everywhere: a second opinion, not the fastest
   KnownOrders* known = nullptr;              ///< orders found before; outlives the call
   int threads = 1;                           ///< that may work at once; the order is the same for any number
+  std::span<const char> weak_diagonal = {};  ///< of weak_diagonals(): joined like zero ones
 };
 
 /// The elimination order on the graph of equations with identical structure.

@@ -118,18 +118,21 @@ Grouping join_zero_diagonals(const SymmetricMatrix& pattern, Grouping grouping,
   constexpr Index kNone = -1;
   std::vector<Index> partner(static_cast<std::size_t>(n), kNone);
   std::vector<char> taken(static_cast<std::size_t>(n), 0);
-  const auto try_pair = [&](Index zero, Index other) {
-    if (!zero_diagonal[static_cast<std::size_t>(zero)] || zero_diagonal[static_cast<std::size_t>(other)])
-      return;
-    if (partner[static_cast<std::size_t>(zero)] != kNone || taken[static_cast<std::size_t>(other)]) return;
-    partner[static_cast<std::size_t>(zero)] = other;
-    taken[static_cast<std::size_t>(other)] = 1;
+  /// `both_zero`: of two such equations, else of one and another.
+  const auto try_pair = [&](Index zero, Index other, bool both_zero) {
+    const auto z = static_cast<std::size_t>(zero), o = static_cast<std::size_t>(other);
+    if (!zero_diagonal[z] || (zero_diagonal[o] != 0) != both_zero || zero == other) return;
+    if (partner[z] != kNone || taken[z] || partner[o] != kNone || taken[o]) return;
+    partner[z] = other;
+    taken[o] = 1;
   };
-  for (Index j = 0; j < n; ++j) {
-    for (Offset k = pattern.column_start[j]; k < pattern.column_start[Offset{j} + 1]; ++k) {
-      if (pattern.value[k] == 0) continue;
-      try_pair(j, pattern.row[k]);
-      try_pair(pattern.row[k], j);
+  for (const bool both_zero : {false, true}) {
+    for (Index j = 0; j < n; ++j) {
+      for (Offset k = pattern.column_start[j]; k < pattern.column_start[Offset{j} + 1]; ++k) {
+        if (pattern.value[k] == 0) continue;
+        try_pair(j, pattern.row[k], both_zero);
+        try_pair(pattern.row[k], j, both_zero);
+      }
     }
   }
   std::vector<Index> label(grouping.group_of.begin(), grouping.group_of.end());

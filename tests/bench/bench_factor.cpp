@@ -6,6 +6,7 @@
 #include "bench/bench_record.hpp"
 #include "bench/process_usage.hpp"
 #include "inertia/certify.hpp"
+#include "order/weak_diagonal.hpp"
 #include "sparse/scaling.hpp"
 #include "symbolic/analysis.hpp"
 
@@ -94,7 +95,8 @@ BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& argument
     analysis = take(analyse({members[0], bench_case.node_of, true}, arguments.threads));
   } else {
     const SymmetricMatrix pattern = union_pattern(family);
-    analysis = take(analyse({&pattern, bench_case.node_of, true}, arguments.threads));
+    const std::vector<char> weak = weak_diagonals(family, bench_case.coefficients);
+    analysis = take(analyse({&pattern, bench_case.node_of, true, false, nullptr, 1, weak}, arguments.threads));
   }
   record.order_seconds = analysis.order_seconds;
   record.analyse_seconds = analysis.analyse_seconds;
