@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <atomic>
+#include <exception>
 #include <mutex>
 #include <new>
 #include <thread>
@@ -78,13 +79,29 @@ Status CountRunner::work_all(std::vector<Task>& tasks) {
   counter_.pencil().forecast_side_by_side(lanes, outcome_);
   std::vector<std::thread> threads;
   threads.reserve(static_cast<std::size_t>(lanes));
-  for (int k = 0; k < lanes; ++k) {
-    threads.emplace_back([&] {
+  const auto lane_of_its_own = [&] {
+    try {
       ThreadPool own(std::max(1, pool_.size() / lanes));
       lane(lanes, own);
-    });
+    } catch (const std::exception&) {  // std::bad_alloc, or no thread to be had
+      const std::lock_guard lock(mutex);
+      stop = true;
+      if (status.ok()) {
+        status = Status::resource_limit("out-of-memory",
+                                        "the system has no memory or no thread for counts side by side", "",
+                                        "use fewer --threads, or raise the limits");
+      }
+    }
+  };
+  for (int k = 0; k < lanes; ++k) {
+    try {
+      threads.emplace_back(lane_of_its_own);
+    } catch (const std::exception&) {
+      break;  // those that were started do it all
+    }
   }
   for (std::thread& thread : threads) thread.join();
+  if (threads.empty()) lane(1, pool_);
   return status;
 }
 

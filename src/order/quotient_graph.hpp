@@ -24,8 +24,8 @@ Grouping group_by_neighbourhood(const SymmetricMatrix& pattern);
 Grouping group_by_node(Index rows, std::span<const Index> node_of);
 
 /// Joins every equation with a zero diagonal (a multiplier, say) to the group of a neighbour with a nonzero
-/// diagonal, at most one per neighbour, so that a 2x2 pivot is at hand when they are eliminated together (Duff
-/// and Pralet, SIAM J. Matrix Anal. Appl. 27 (2005)); those that find none left, two and two.
+/// diagonal, at most one per neighbour, so that a 2x2 pivot is at hand when they are eliminated together
+/// (Duff and Pralet, SIAM J. Matrix Anal. Appl. 27 (2005)); those that find none left, two and two.
 /// `zero_diagonal[i]` nonzero marks them. Returns the coarser grouping. Cost: one pass over the entries.
 Grouping join_zero_diagonals(const SymmetricMatrix& pattern, Grouping grouping,
                              std::span<const char> zero_diagonal);

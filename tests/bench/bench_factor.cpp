@@ -96,7 +96,8 @@ BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& argument
   } else {
     const SymmetricMatrix pattern = union_pattern(family);
     const std::vector<char> weak = weak_diagonals(family, bench_case.coefficients);
-    analysis = take(analyse({&pattern, bench_case.node_of, true, false, nullptr, 1, weak}, arguments.threads));
+    analysis =
+        take(analyse({&pattern, bench_case.node_of, true, false, nullptr, 1, weak}, arguments.threads));
   }
   record.order_seconds = analysis.order_seconds;
   record.analyse_seconds = analysis.analyse_seconds;

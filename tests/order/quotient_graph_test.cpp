@@ -123,8 +123,7 @@ TEST(JoinZeroDiagonals, PairsEachWithOneOwnNeighbourAndLeavesNoPairUnused) {
 
 TEST(JoinZeroDiagonals, PrefersAPartnerWithADiagonal) {
   // 0 and 1 have none; 0 is coupled to both others, and 2 is the only strong one.
-  const SymmetricMatrix matrix =
-      from_triplets(3, {{0, 0, 0}, {1, 0, 1}, {2, 0, 1}, {1, 1, 0}, {2, 2, 1}});
+  const SymmetricMatrix matrix = from_triplets(3, {{0, 0, 0}, {1, 0, 1}, {2, 0, 1}, {1, 1, 0}, {2, 2, 1}});
   const std::vector<Index> alone{0, 1, 2};
   const std::vector<char> zero{1, 1, 0};
   const Grouping joined = join_zero_diagonals(matrix, group_by_node(3, alone), zero);
