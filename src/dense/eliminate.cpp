@@ -55,10 +55,10 @@ class FrontEliminator {
       // What failed is tried again beside its partners while that takes a good part of it.
       const Index left = front_.candidates - done;
       if (left == 0 || (before >= 0 && done - before <= left / kWorthAnotherPass)) break;
-      zero_columns_ = false;
-      limit = pair_up(done);
+      const PairedCandidates paired = pair_up(front_, done, options_.threshold, first_live(done));
+      limit = paired.end;
       if (limit == done) {  // nor would the search find a partner; at a root it makes do with less
-        search_may_help = zero_columns_ || front_.candidates == layout_.order;
+        search_may_help = paired.zero_columns || front_.candidates == layout_.order;
         break;
       }
     }
@@ -99,40 +99,6 @@ class FrontEliminator {
     }
     additions_inside_ += most_in_panel_;
     return true;
-  }
-
-  /// Puts candidates from `from` on that could be pivots by their own column in front: with a diagonal entry
-  /// that is large enough, or each beside the candidate with its largest entry. Returns the end of them; the
-  /// others have no partner left among the candidates.
-  Index pair_up(Index from) {
-    const double limit = 1 / options_.threshold;
-    const auto entry = [&](Index i, Index j) {
-      return std::fabs(i >= j ? front_.matrix.at(i, j) : front_.matrix.at(j, i));
-    };
-    Index end = front_.candidates;
-    for (Index j = from; j < end;) {
-      Scalar largest = 0, candidate = 0;
-      Index partner = -1;
-      for (Index i = from; i < layout_.order; ++i) {
-        if (i == j) continue;
-        const Scalar size = entry(i, j);
-        largest = std::max(largest, size);
-        if (i > j && i < end && size > candidate) {
-          candidate = size;
-          partner = i;
-        }
-      }
-      if (entry(j, j) > 0 && largest <= limit * entry(j, j)) {
-        ++j;
-      } else if (partner >= 0 && largest <= limit * candidate) {
-        swap_symmetric(front_, j + 1, partner, first_live(from));
-        j += 2;
-      } else {
-        zero_columns_ = zero_columns_ || (largest == 0 && entry(j, j) == 0);
-        swap_symmetric(front_, j, --end, first_live(from));
-      }
-    }
-    return end;
   }
 
   /// Takes tiles until every column of the panel is a pivot or has failed. False: stopped or not finite.
@@ -513,28 +479,10 @@ class FrontEliminator {
   Scalar weight_[kTileWidth], step_[kTileWidth];  ///< |D| |L|^T e and D L^T x of the current tile
   Index additions_beyond_ = 0;                    ///< to entries beyond the panels, over all panels
   Index most_in_panel_ = 0;                       ///< to entries of one panel, by its own tiles, of this pass
-  bool zero_columns_ = false;                     ///< pair_up() has met columns that vanish
   Index additions_inside_ = 0;                    ///< the same over all passes
 };
 
 }  // namespace
-
-template <class Scalar>
-void swap_symmetric(const FrontOf<Scalar>& front, Index i, Index j, Index first_kept_column) {
-  if (i == j) return;
-  if (i > j) std::swap(i, j);
-  const BlockLowerOf<Scalar>& m = front.matrix;
-  for (Index k = first_kept_column; k < i; ++k) std::swap(m.at(i, k), m.at(j, k));
-  std::swap(m.at(i, i), m.at(j, j));
-  for (Index k = i + 1; k < j; ++k) std::swap(m.at(k, i), m.at(j, k));
-  for (Index k = j + 1; k < m.layout.order; ++k) std::swap(m.at(k, i), m.at(k, j));
-  std::swap(front.label[i], front.label[j]);
-  std::swap(front.row_error[i], front.row_error[j]);
-  std::swap(front.growth[i], front.growth[j]);
-  if (front.fault.sign == nullptr) return;
-  for (Scalar* values : {front.fault.sign, front.fault.image, front.fault.error})
-    std::swap(values[i], values[j]);
-}
 
 template <class Scalar>
 EliminationResult eliminate_front(const FrontOf<Scalar>& front, const EliminationOptions& options,
@@ -542,8 +490,6 @@ EliminationResult eliminate_front(const FrontOf<Scalar>& front, const Eliminatio
   return FrontEliminator<Scalar>(front, options, scratch, team).run();
 }
 
-template void swap_symmetric(const FrontOf<double>&, Index, Index, Index);
-template void swap_symmetric(const FrontOf<float>&, Index, Index, Index);
 template EliminationResult eliminate_front(const FrontOf<double>&, const EliminationOptions&,
                                            EliminationScratchOf<double>&, ThreadPool*);
 template EliminationResult eliminate_front(const FrontOf<float>&, const EliminationOptions&,

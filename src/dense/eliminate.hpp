@@ -78,6 +78,17 @@ EliminationResult eliminate_front(const FrontOf<Scalar>& front, const Eliminatio
 template <class Scalar>
 void swap_symmetric(const FrontOf<Scalar>& front, Index i, Index j, Index first_kept_column);
 
+struct PairedCandidates {
+  Index end = 0;  ///< of those that may be pivots; the others have no partner left among the candidates
+  bool zero_columns = false;  ///< some of the others vanish
+};
+
+/// Puts candidates from `from` on that may be pivots by their own column in front: with a diagonal entry that
+/// is large enough, or each beside the candidate with its largest entry. Cost: one look at the columns, and
+/// the interchanges.
+template <class Scalar>
+PairedCandidates pair_up(const FrontOf<Scalar>& front, Index from, double threshold, Index first_kept_column);
+
 /// The last resort for candidates [from, candidates): threshold partial pivoting with a search of whole
 /// columns. Returns the first row that was not eliminated. Cost: (candidates - from)^2 x order.
 template <class Scalar>

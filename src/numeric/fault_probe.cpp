@@ -5,6 +5,7 @@
 #include <vector>
 
 #include "base/counter_random.hpp"
+#include "sparse/product.hpp"
 
 namespace stanchion {
 namespace {
@@ -40,21 +41,15 @@ FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed, Thr
   FaultProbe probe{draw_signs(family.rows, seed, matrix.offset), Buffer<double>(family.rows, 0.0),
                    Buffer<double>(family.rows, 0.0)};
   std::vector<TrackedSum> along_column(static_cast<std::size_t>(family.rows));
-  const auto for_entries = [&](Index j, const auto& use) {
-    for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-      const Index i = family.row[k];
-      use(i, matrix.entry(k, i, j) - (i == j ? matrix.offset : 0.0));
-    }
-  };
   for_both_triangles(
       pool, family.rows,
       [&](Index j) {
         TrackedSum sum;
-        for_entries(j, [&](Index i, double value) { sum.add(value * probe.sign[i]); });
+        for_column_entries(matrix, j, [&](Index i, double value) { sum.add(value * probe.sign[i]); });
         along_column[static_cast<std::size_t>(j)] = sum;
       },
       [&](Index j) {
-        for_entries(j, [&](Index i, double value) {
+        for_column_entries(matrix, j, [&](Index i, double value) {
           if (i == j) return;
           probe.product[i] += value * probe.sign[j];
           probe.product_error[i] += std::fabs(probe.product[i]);

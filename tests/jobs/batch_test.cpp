@@ -149,10 +149,15 @@ TEST(Batch, AnInputThatChangesBeforeItsJobIsReadAgain) {
   EXPECT_EQ(*digest_of((*listed)[1].request, files), *worked.recorded[1].digest);
 }
 
-TEST(Batch, AnInputThatChangesWhileItsJobRunsSpoilsTheResult) {
+/// One job, which does `more` to its input K.mtx while it runs.
+Worked work_that(const std::string& more) {
   const TestFolder folder;
   folder.write("K.mtx", "some bytes");
-  const Worked worked = work(folder, kAnswer + "echo changed > K.mtx\n", check_of("a", "K.mtx"));
+  return work(folder, kAnswer + more, check_of("a", "K.mtx"));
+}
+
+TEST(Batch, AnInputThatChangesWhileItsJobRunsSpoilsTheResult) {
+  const Worked worked = work_that("echo changed > K.mtx\n");
   ASSERT_EQ(worked.recorded.size(), 1U);
   EXPECT_EQ(worked.recorded[0].exit_code, 2);
   EXPECT_EQ(worked.recorded[0].reason, "an input changed while the job ran");
@@ -160,9 +165,7 @@ TEST(Batch, AnInputThatChangesWhileItsJobRunsSpoilsTheResult) {
 }
 
 TEST(Batch, AnInputThatIsTouchedWhileItsJobRunsIsTheSame) {
-  const TestFolder folder;
-  folder.write("K.mtx", "some bytes");
-  const Worked worked = work(folder, kAnswer + "touch -d 2001-01-01 K.mtx\n", check_of("a", "K.mtx"));
+  const Worked worked = work_that("touch -d 2001-01-01 K.mtx\n");
   ASSERT_EQ(worked.recorded.size(), 1U);
   EXPECT_EQ(worked.recorded[0].exit_code, 0);
   EXPECT_TRUE(worked.recorded[0].digest);

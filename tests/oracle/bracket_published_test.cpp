@@ -59,14 +59,15 @@ class Published : public testing::Test {
   }
 };
 
+constexpr EndSupport kFixed{true, true}, kPinned{true, false}, kFree{false, false}, kGuided{false, true};
+constexpr std::tuple<const char*, EndSupport, EndSupport> kEndConditions[] = {
+    {"fixed-free", kFixed, kFree},     {"pinned-pinned", kPinned, kPinned},
+    {"fixed-pinned", kFixed, kPinned}, {"fixed-fixed", kFixed, kFixed},
+    {"fixed-guided", kFixed, kGuided}, {"pinned-guided", kPinned, kGuided}};
+
 TEST_F(Published, EulerColumnsForAllSixEndConditions) {
   const auto& euler = published()["closed_form"]["euler_P_L2_over_EI"];
-  const EndSupport kFixed{true, true}, kPinned{true, false}, kFree{false, false}, kGuided{false, true};
-  const std::tuple<const char*, EndSupport, EndSupport> cases[] = {
-      {"fixed-free", kFixed, kFree},     {"pinned-pinned", kPinned, kPinned},
-      {"fixed-pinned", kFixed, kPinned}, {"fixed-fixed", kFixed, kFixed},
-      {"fixed-guided", kFixed, kGuided}, {"pinned-guided", kPinned, kGuided}};
-  for (const auto& [name, low, high] : cases) {
+  for (const auto& [name, low, high] : kEndConditions) {
     SCOPED_TRACE(name);
     double found[2];
     for (const Index elements : {12, 24}) {
@@ -110,12 +111,7 @@ std::vector<double> three_loads(const std::string& ends) {
 }
 
 TEST_F(Published, SecondAndThirdLoadsOfColumnsConvergeWithOrderFour) {
-  const EndSupport kFixed{true, true}, kPinned{true, false}, kFree{false, false}, kGuided{false, true};
-  const std::tuple<const char*, EndSupport, EndSupport> cases[] = {
-      {"fixed-free", kFixed, kFree},     {"pinned-pinned", kPinned, kPinned},
-      {"fixed-pinned", kFixed, kPinned}, {"fixed-fixed", kFixed, kFixed},
-      {"fixed-guided", kFixed, kGuided}, {"pinned-guided", kPinned, kGuided}};
-  for (const auto& [name, low, high] : cases) {
+  for (const auto& [name, low, high] : kEndConditions) {
     const std::vector<double> exact = three_loads(name);
     std::array<std::vector<double>, 3> errors;
     std::size_t mesh = 0;
@@ -138,7 +134,6 @@ TEST_F(Published, SecondAndThirdLoadsOfColumnsConvergeWithOrderFour) {
 }
 
 TEST_F(Published, ColumnsOnElasticFoundation) {
-  const EndSupport kPinned{true, false};
   for (const auto& [key, exact] :
        published()["closed_form"]["beam_on_elastic_foundation_pinned_P_L2_over_EI"].items()) {
     SCOPED_TRACE("foundation " + key);
@@ -167,7 +162,6 @@ TEST_F(Published, PortalsThatSway) {
 
 TEST_F(Published, FrequenciesOfBeams) {
   const auto& closed = published()["closed_form"]["beam_beta_L"];
-  const EndSupport kFixed{true, true}, kPinned{true, false}, kFree{false, false};
   const std::tuple<const char*, EndSupport, EndSupport, Index> cases[] = {
       {"clamped-clamped = free-free", kFixed, kFixed, 0},
       {"clamped-clamped = free-free", kFree, kFree, 2},
