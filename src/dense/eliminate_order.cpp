@@ -24,7 +24,8 @@ void swap_symmetric(const FrontOf<Scalar>& front, Index i, Index j, Index first_
 }
 
 template <class Scalar>
-PairedCandidates pair_up(const FrontOf<Scalar>& front, Index from, double threshold, Index first_kept_column) {
+PairedCandidates pair_up(const FrontOf<Scalar>& front, Index from, double threshold,
+                         Index first_kept_column) {
   const double limit = 1 / threshold;
   const auto entry = [&front](Index i, Index j) {
     return std::fabs(i >= j ? front.matrix.at(i, j) : front.matrix.at(j, i));

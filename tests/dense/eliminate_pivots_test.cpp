@@ -34,6 +34,35 @@ TEST(EliminatePivots, AZeroColumnIsAPivotEvenWithRowsBelow) {
   EXPECT_EQ(std::count(front.kind.begin(), front.kind.end(), PivotKind::kZero), 1);
 }
 
+/// Candidates without a diagonal, each coupled to one that lies tiles away; the last has no partner but a row
+/// below.
+TEST(EliminatePivots, CandidatesThatFailedAreTriedAgainBesideTheirPartners) {
+  constexpr Index kPairs = 100, kCandidates = 2 * kPairs + 1, kOrder = kCandidates + 30;
+  const Full matrix = full_from(kOrder, [](Index i, Index j) {
+    if (i < 2 * kPairs && i + j == 2 * kPairs - 1) return 5.0;
+    if (i >= kCandidates && j == kCandidates - 1) return 7.0;
+    return i >= kCandidates && j < 2 * kPairs ? 0.01 * ((i * 31 + j * 17) % 23) : 0.0;
+  });
+  FrontCase front(matrix, kCandidates);
+  front.run({});
+  EXPECT_EQ(front.result.eliminated, 2 * kPairs);
+  EXPECT_EQ(front.result.two_by_two, kPairs);
+  // By tiles, not one search after the other: one addition a tile or column block, not one a pivot.
+  EXPECT_GE(front.result.additions, 2);
+  EXPECT_LE(front.result.additions, 12);
+  for (Index k = 0; k < 2 * kPairs; k += 2) {
+    const auto at = static_cast<std::size_t>(k);
+    EXPECT_EQ(front.label[at] + front.label[at + 1], 2 * kPairs - 1);
+  }
+}
+
+TEST(EliminatePivots, AdditionsCountEveryTileOfAPanel) {
+  Random random(82);
+  FrontCase front(test::positive_definite(random, 3 * kTileWidth), 3 * kTileWidth);
+  front.run({});
+  EXPECT_GE(front.result.additions, 2);  // the last tile has had two before it
+}
+
 TEST(EliminatePivots, AZeroDiagonalTakesPairs) {
   FrontCase front(full_from(2, [](Index i, Index j) { return i == j ? 0.0 : 3.0; }), 2);
   front.run({});
