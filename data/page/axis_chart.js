@@ -27,6 +27,18 @@ export function tick_text(value, step) {
   return value.toFixed(digits).replace(/^-(0(\.0*)?)$/, "$1");
 }
 
+/// As many ticks as their labels leave room for over `pixels`, and on a wide axis not more than one in 110.
+export function ticks_with_room(low, high, pixels) {
+  const letter = 7.5, gap = 16;
+  const most = Math.max(4, Math.floor(pixels / 110));
+  for (let many = most; many > 2; many -= 1) {
+    const found = ticks(low, high, many);
+    const widest = Math.max(...found.list.map((at) => tick_text(at, found.step).length));
+    if (found.step / (high - low) * pixels >= widest * letter + gap) return found;
+  }
+  return ticks(low, high, 2);
+}
+
 /// A number between the neighbouring pixels, as short as it can be.
 export function short_value(value, pixel) {
   const step = tick_step(pixel, 1);
@@ -197,7 +209,7 @@ export class AxisChart {
     this.canvas.setAttribute("width", this.width);
     this.canvas.setAttribute("height", this.height);
     const parts = [];
-    const { step, list } = ticks(...this.window, Math.max(2, Math.floor(this.width / 110)));
+    const { step, list } = ticks_with_room(...this.window, this.width - this.left - this.right);
     parts.push(svg("rect", { class: "strip", x: this.left, y: this.base, width: this.width - this.left - this.right, height: 34 }));
     for (const at of list) {
       const x = this.x(at);

@@ -3,7 +3,7 @@ import assert from "node:assert/strict";
 import test from "node:test";
 
 const from = (name) => import(new URL(`../../data/page/${name}.js`, import.meta.url));
-const { lines_of, short_value, tick_text, ticks, zoomed } = await from("axis_chart");
+const { lines_of, short_value, tick_text, ticks, ticks_with_room, zoomed } = await from("axis_chart");
 const { falls_of, merge_counts, steps_of } = await from("staircase");
 const { EventParser } = await from("events");
 const { JobBook, passes } = await from("jobs");
@@ -80,6 +80,17 @@ test("a certificate says level, way, bounds and assumptions", () => {
   const text = rows.map((row) => row.join(": ")).join("\n");
   for (const part of ["backed by: proof", "one factorization", "rounding errors at most 1e-13", "1e-11", "exceeds 2e-12", "rounding is IEEE 754"]) assert.ok(text.includes(part), part);
   assert.equal(words.certificate_in_words({ level: "none", assumptions: [], runs: [] })[0][1], "nothing: no certificate");
+});
+
+test("a narrow axis has two labels at least, and room between them", () => {
+  for (const [low, high] of [[1.61, 1.69], [0, 3], [-2.4, 2.4], [0.999, 1.001], [12, 3400], [-1.9, 1.9], [1.5, 1.95]]) {
+    for (const pixels of [220, 284, 600, 1800]) {
+      const { step, list } = ticks_with_room(low, high, pixels);
+      assert.ok(list.length >= 2, `${low} to ${high} on ${pixels}: ${list}`);
+      const widest = Math.max(...list.map((at) => tick_text(at, step).length));
+      assert.ok(step / (high - low) * pixels >= widest * 7, `${list} on ${pixels}`);
+    }
+  }
 });
 
 test("ticks are 1, 2 or 5 times a power of ten and lie inside", () => {
