@@ -169,7 +169,7 @@ export class JobView {
     if (this.bar_words.textContent !== text) this.bar_words.textContent = text;
     this.bar_facts.textContent = [words ? `Forecast: ${words}.` : "", job.memory_bytes ? `Memory limit ${bytes(job.memory_bytes)}.` : "",
       job.state === "running" && job.started ? `Running for ${seconds(Math.max(0, (Date.now() - Date.parse(job.started)) / 1000))}.` : "",
-      job.attempts > 1 ? "This is the second attempt: the server ended during the first." : ""].filter(Boolean).join(" ");
+      job.attempts > 1 ? `This is attempt ${job.attempts}: the one before met its memory limit, or was cut short.` : ""].filter(Boolean).join(" ");
   }
 
   async draw_result(result, turn) {

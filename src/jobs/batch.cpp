@@ -17,6 +17,7 @@
 #include "jobs/digest_lanes.hpp"
 #include "jobs/durable_file.hpp"
 #include "jobs/memory_need.hpp"
+#include "jobs/next_attempt.hpp"
 #include "model/byte_size.hpp"
 #include "model/exit_code.hpp"
 
@@ -26,9 +27,8 @@ namespace {
 constexpr int kMostPasses = 16;  // so often may smaller jobs go before one that waits for memory
 constexpr std::size_t kLookAhead = 64;
 constexpr std::size_t kReadAhead = 1024;  // of so many jobs digests are asked for at a time
-constexpr int kMostAttempts = 6;
-constexpr int kWaitMilliseconds = 1000;  // an interruption ends the wait at once
-constexpr double kTrimSeconds = 10;      // so often the analysis store is looked after
+constexpr int kWaitMilliseconds = 1000;   // an interruption ends the wait at once
+constexpr double kTrimSeconds = 10;       // so often the analysis store is looked after
 
 /// One job that is not recorded yet.
 struct Waiting {
@@ -37,7 +37,7 @@ struct Waiting {
   std::optional<std::string> digest;
   std::string model;           ///< digest of what the forecast depends on
   std::optional<Offset> need;  ///< absent: a forecast has to say it
-  int attempts = 0, passed_by = 0;
+  int attempts = 0, lost = 0, passed_by = 0;
   double seconds = 0, cpu_seconds = 0;
 };
 
@@ -79,7 +79,7 @@ class Batch {
         lanes_(files, rules) {}
 
   Status run(const std::vector<const ListedJob*>& jobs) {
-    for (const ListedJob* job : jobs) queue_.push_back({job, false, {}, {}, {}, 0, 0, 0, 0});
+    for (const ListedJob* job : jobs) queue_.push_back({job, false, {}, {}, {}, 0, 0, 0, 0, 0});
     jobs_ = jobs.size();
     while (!queue_.empty() || !running_.empty() || !unconfirmed_.empty()) {
       if (context_.cancel != nullptr && context_.cancel->cancelled()) return stop();
@@ -302,20 +302,11 @@ class Batch {
     Waiting& waiting = ended.waiting;
     waiting.seconds += ended.watch.seconds();
     waiting.cpu_seconds += end.cpu_seconds;
-    // A library that is refused memory may abort; a defect does so, too, and then again with all the memory.
-    const bool aborted = end.kind == ChildEndKind::kCrashed && end.signal == SIGABRT;
-    const bool memory = end.kind == ChildEndKind::kMemory || (aborted && waiting.attempts < 2);
-    if (memory && ended.need < options_.memory_cap && waiting.attempts < kMostAttempts) {
-      waiting.need = aborted ? options_.memory_cap : std::min(2 * ended.need, options_.memory_cap);
-      log(waiting, fmt::format("{}; once more with {} bytes", end.reason, *waiting.need));
-      queue_.push_front(std::move(waiting));
-      return {};
-    }
-    // Somebody took the child away, perhaps the kernel: that says little about the job, so it gets a second
-    // try.
-    if (end.kind == ChildEndKind::kKilled && waiting.attempts < 2) {
-      waiting.need = std::min(2 * ended.need, options_.memory_cap);
-      log(waiting, end.reason + "; once more");
+    if (const auto memory =
+            memory_of_next_attempt(end, {waiting.attempts, waiting.lost}, ended.need, options_.memory_cap)) {
+      waiting.need = memory;
+      if (end.kind == ChildEndKind::kKilled) ++waiting.lost;
+      log(waiting, fmt::format("{}; once more with {} bytes", end.reason, *memory));
       queue_.push_front(std::move(waiting));
       return {};
     }

@@ -42,10 +42,12 @@ HttpResponse Api::upload(const Call& call) {
   }
   const auto name = head.parameter("name");
   if (name && (name->empty() || name->size() > 255)) {
-    return problem_response(400, "bad-request", "'name' has 1 to 255 characters", "", "name");
+    return problem_response(400, "bad-request", "'name' has 1 to 255 characters",
+                            "leave it out, or shorten it", "name");
   }
   if (!call.id.empty() && !is_digest(call.id)) {
-    return problem_response(400, "bad-request", "this is no SHA-256 in lower case", "", "digest");
+    return problem_response(400, "bad-request", "this is no SHA-256 in lower case",
+                            "name 64 digits and letters a to f", "digest");
   }
   const std::int64_t most = std::min(parts_.options.upload_bytes, parts_.inputs.most_bytes());
   const auto too_long = [most] {

@@ -17,6 +17,8 @@
 namespace stanchion::service {
 namespace {
 
+constexpr std::size_t kLongestTitle = 500;  // lists and events carry it
+
 /// Sorts by time, cannot be guessed.
 std::string new_id() {
   std::uint64_t random = 0;
@@ -33,6 +35,10 @@ bool is_json_type(const std::string& field) {
   return type == "application/json" || type == "application/json;charset=utf-8";
 }
 
+HttpResponse unknown_job() {
+  return problem_response(404, "unknown-job", "there is no such job", "GET /v1/jobs lists those there are");
+}
+
 HttpResponse accepted(const JobRecord& job, bool replayed) {
   HttpResponse response = json_response(202, job_to_json(job, {}, true));
   response.fields.emplace_back("Location", "/v1/jobs/" + job.id);
@@ -46,7 +52,7 @@ std::optional<JobRecord> Api::find_job(const std::string& id, HttpResponse& refu
   std::optional<JobRecord> job;
   const Status status = parts_.journal.read([&](JobTable& table) { job = table.find(id); });
   if (!status.ok()) refusal = problem_response(status);
-  if (status.ok() && !job) refusal = problem_response(404, "unknown-job", "there is no such job");
+  if (status.ok() && !job) refusal = unknown_job();
   return job;
 }
 
@@ -69,7 +75,12 @@ Result<JobRecord> Api::read_submission(const std::string& body) {
   job.id = request->id;
   job.command = request->command;
   for (const JobOption& option : request->options) {
-    if (option.key == "title") job.title = option.value;
+    if (option.key != "title") continue;
+    if (option.value.size() > kLongestTitle) {
+      return Status::bad_input("bad-request", fmt::format("a title has at most {} bytes", kLongestTitle),
+                               "options/title", "shorten it");
+    }
+    job.title = option.value;
   }
   if (auto problem = settle_inputs(*request, job)) {
     return Status::bad_input(problem->code, problem->detail, problem->place, problem->remedy);
@@ -230,7 +241,7 @@ HttpResponse Api::cancel_job(const Call& call) {
     job = table.find(call.id);
   });
   if (!status.ok()) return problem_response(status);
-  if (!job) return problem_response(404, "unknown-job", "there is no such job");
+  if (!job) return unknown_job();
   if (!waited && !runs) return problem_response(409, "job-ended", "this job has ended", "it can be deleted");
   parts_.runner.cancel(job->number);
   parts_.feed.publish("job", job->id, job_to_json(*job, {}, false).dump());

@@ -13,6 +13,7 @@ namespace stanchion::service {
 namespace {
 
 constexpr int kThreads = 4;
+constexpr auto kPause = std::chrono::seconds(1);  // before a store that cannot be written is tried again
 
 bool flush(const std::string& path, int flags) {
   const FileHandle handle(::open(path.c_str(), O_RDONLY | O_CLOEXEC | O_NOFOLLOW | flags));
@@ -60,6 +61,24 @@ FinisherFigures JobFinisher::figures() const {
   return figures_;
 }
 
+/// False when the job was not there to be ended, or the service ends while the store cannot be written.
+bool JobFinisher::write_end(const FinishedRun& run) {
+  for (bool first = true;; first = false) {
+    bool ended = false;
+    const Status status = journal_.write([&](JobTable& table) {
+      if (!run.has_begun && !table.begin(run.job)) return;
+      ended = table.end(run.job);
+    });
+    if (status.ok()) return ended;
+    if (first) {
+      log_({"store-failed", "its end cannot be written yet: " + status.message(), run.job.id,
+            LogLevel::kError});
+    }
+    std::unique_lock lock(mutex_);
+    if (changed_.wait_for(lock, kPause, [this] { return stopping_; })) return false;
+  }
+}
+
 void JobFinisher::finish_one(FinishedRun& run) {
   JobRecord& job = run.job;
   std::error_code failure;
@@ -69,15 +88,7 @@ void JobFinisher::finish_one(FinishedRun& run) {
     job.headline = headline_of(run.folder + "/result.json");
   }
   job.finished_ms = now_ms();
-  bool ended = false;
-  const Status status = journal_.write([&](JobTable& table) {
-    if (!run.has_begun && !table.begin(job)) return;
-    ended = table.end(job);
-  });
-  if (!status.ok()) {
-    log_({"store-failed", "its end could not be written: " + status.message(), job.id, LogLevel::kError});
-  }
-  if (!ended) return;
+  if (!write_end(run)) return;
   if (!run.has_begun) ++job.attempts;
   log_({"job-ended",
         fmt::format("{}, {}", name_of(job.state),

@@ -36,13 +36,15 @@ class JobFinisher {
   JobFinisher(const JobFinisher&) = delete;
   JobFinisher& operator=(const JobFinisher&) = delete;
 
-  /// Thread safe. The destructor waits until all is done.
+  /// Thread safe. The destructor waits until all is done. While the store cannot be written the ends are kept
+  /// and tried again; what then is left at the end of the service runs once more with the next one.
   void finish(FinishedRun run);
   FinisherFigures figures() const;
 
  private:
   void work();
   void finish_one(FinishedRun& run);
+  bool write_end(const FinishedRun& run);
 
   JobJournal& journal_;
   InputStore& inputs_;

@@ -74,10 +74,12 @@ JobJournal::Figures JobJournal::figures() const {
   return figures_;
 }
 
-Status JobJournal::commit(std::vector<Change>& changes) {
+Status JobJournal::commit(Change* first, std::size_t count, bool& begun) {
   try {
+    begun = false;
     writer_.execute("BEGIN IMMEDIATE");
-    for (Change& change : changes) (*change.change)(*writer_table_);
+    begun = true;
+    for (std::size_t k = 0; k < count; ++k) (*first[k].change)(*writer_table_);
     writer_.execute("COMMIT");
     return {};
   } catch (const std::exception& error) {
@@ -90,6 +92,24 @@ Status JobJournal::commit(std::vector<Change>& changes) {
   }
 }
 
+/// All in one transaction; one by one where that fails, so that a bad change fails alone.
+void JobJournal::settle(std::vector<Change>& changes) {
+  bool begun = false;
+  std::vector<Status> results(changes.size(), commit(changes.data(), changes.size(), begun));
+  std::uint64_t transactions = 1;
+  if (!results.front().ok() && begun && changes.size() > 1) {
+    transactions = changes.size();
+    for (std::size_t k = 0; k < changes.size(); ++k) results[k] = commit(&changes[k], 1, begun);
+  }
+  {
+    const std::lock_guard lock(mutex_);
+    figures_.transactions += transactions;
+    figures_.changes += changes.size();
+    figures_.healthy = results.back().ok();
+  }
+  for (std::size_t k = 0; k < changes.size(); ++k) changes[k].done.set_value(results[k]);
+}
+
 void JobJournal::write_all() {
   while (true) {
     std::vector<Change> changes;
@@ -99,14 +119,7 @@ void JobJournal::write_all() {
       if (waiting_.empty()) return;
       changes.swap(waiting_);
     }
-    const Status status = commit(changes);
-    {
-      const std::lock_guard lock(mutex_);
-      ++figures_.transactions;
-      figures_.changes += changes.size();
-      figures_.healthy = status.ok();
-    }
-    for (Change& change : changes) change.done.set_value(status);
+    settle(changes);
   }
 }
 

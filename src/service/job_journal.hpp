@@ -27,8 +27,9 @@ class JobJournal {
   JobJournal(const JobJournal&) = delete;
   JobJournal& operator=(const JobJournal&) = delete;
 
-  /// Runs `change` in a transaction and waits until the disk has it. Whatever it throws undoes the whole
-  /// transaction and comes back as failure: a change has to look before it writes.
+  /// Runs `change` in a transaction, with others that come at the same time, and waits until the disk has it.
+  /// What it throws undoes the transaction and comes back as failure. `change` may be run twice: when another
+  /// one of the transaction fails, each gets its own.
   Status write(const std::function<void(JobTable&)>& change);
 
   /// Reads the last written state, side by side with the writer.
@@ -48,7 +49,8 @@ class JobJournal {
 
   explicit JobJournal(const std::string& path);
   void write_all();
-  Status commit(std::vector<Change>& changes);
+  void settle(std::vector<Change>& changes);
+  Status commit(Change* first, std::size_t count, bool& begun);
 
   Database writer_;
   std::unique_ptr<JobTable> writer_table_;

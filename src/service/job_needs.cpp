@@ -12,7 +12,7 @@ namespace {
 constexpr Offset kMebi = Offset{1} << 20;
 constexpr std::int64_t kSmallBytes = 512 << 10;
 constexpr Offset kSmallMemory = 256 * kMebi;
-constexpr std::int64_t kSmallSeconds = 600;
+constexpr double kSmallSeconds = 600;
 
 const JobOption* option_of(const JobRequest& request, const char* key) {
   for (const JobOption& option : request.options) {
@@ -40,6 +40,12 @@ double questions_of(const JobRequest& request) {
   return questions;
 }
 
+std::int64_t seconds_within(double seconds, const MachineShare& share) {
+  const auto most = static_cast<double>(share.cpu_seconds);
+  return seconds < most ? static_cast<std::int64_t>(seconds)
+                        : share.cpu_seconds;  // also of what is no number
+}
+
 }  // namespace
 
 Result<std::optional<Offset>> memory_cap_of(const JobRequest& request) {
@@ -64,8 +70,8 @@ std::optional<JobNeeds> needs_of_small(const JobRequest& request, std::int64_t i
                     asked_threads(request).value_or(share.processors)};
   }
   if (!all_plain || input_bytes > kSmallBytes) return std::nullopt;
-  return JobNeeds{std::min(kSmallMemory, share.memory_bytes), std::min(kSmallSeconds, share.cpu_seconds),
-                  threads};
+  return JobNeeds{std::min(kSmallMemory, share.memory_bytes),
+                  seconds_within(kSmallSeconds + questions_of(request), share), threads};
 }
 
 JobNeeds needs_of_forecast(std::int64_t input_bytes, bool all_plain, const MachineShare& share) {
@@ -83,8 +89,8 @@ std::optional<JobNeeds> needs_of(const JobRequest& request, const JobForecast& f
   const Offset comfortable = 128 * kMebi + forecast.bytes_solve + forecast.bytes_solve / 2;
   needs.memory_bytes = std::min(std::max(least, comfortable), share.memory_bytes);
   needs.threads = asked_threads(request).value_or(forecast.seconds > 0.5 ? share.processors : 1);
-  const double cpu = 600 + 20 * forecast.seconds * share.processors * questions_of(request);
-  needs.cpu_seconds = static_cast<std::int64_t>(std::min(cpu, static_cast<double>(share.cpu_seconds)));
+  needs.cpu_seconds =
+      seconds_within(600 + 20 * forecast.seconds * share.processors * questions_of(request), share);
   return needs;
 }
 

@@ -31,6 +31,7 @@ struct JobRecord {
   std::int64_t created_ms = 0;  ///< since 1970
   std::optional<std::int64_t> started_ms, finished_ms;
   int attempts = 0;
+  int lost = 0;  ///< attempts that the end of the service, or a kill from outside, cut short
   bool cancel_wanted = false;
   std::optional<std::int64_t> memory_bytes, forecast_bytes;
   std::optional<double> forecast_seconds;

@@ -14,8 +14,9 @@ namespace stanchion::service {
 namespace {
 
 constexpr std::size_t kLookAhead = 64;  // jobs behind the first that may be preferred while it does not fit
-constexpr auto kPatience = std::chrono::seconds(30);  // then the first one is waited for
-constexpr auto kStopWait = std::chrono::seconds(10);  // between asking a child to stop and ending it
+constexpr auto kPatience = std::chrono::seconds(30);     // then the first one is waited for
+constexpr auto kStopWait = std::chrono::seconds(10);     // between asking a child to stop and ending it
+constexpr auto kPause = std::chrono::milliseconds(100);  // for want of disk or memory, most likely
 constexpr auto kTellEvery = std::chrono::milliseconds(250);
 constexpr int kNiceness = 10;  // answering comes before computing
 constexpr auto kForecastFile = "forecast.json";
@@ -46,17 +47,34 @@ std::optional<JobForecast> read_forecast(const std::string& path) {
                      static_cast<Offset>(number("peak_bytes_solve")), number("seconds")};
 }
 
-JobProblem problem_of(const ChildEnd& end) {
+JobProblem problem_of(const ChildEnd& end, const JobNeeds& needs) {
   JobProblem problem{500, "failed", end.reason, "", ""};
   if (end.failure) {
     problem = {422, end.failure->code, end.failure->message, end.failure->place, end.failure->remedy};
     if (end.failure->kind == "resource_limit") problem.status = 507;
     if (end.failure->kind == "internal") problem.status = 500;
   }
-  if (end.kind == ChildEndKind::kMemory) problem = {507, "memory-limit", end.reason, "", ""};
-  if (end.kind == ChildEndKind::kCpuTime) problem = {507, "cpu-limit", end.reason, "", ""};
-  if (end.kind == ChildEndKind::kKilled) problem.code = "killed";
-  if (end.kind == ChildEndKind::kCrashed) problem.code = "crashed";
+  switch (end.kind) {
+    case ChildEndKind::kMemory:
+      problem = {507, "memory-limit", end.reason, "",
+                 "allow more: the request's memory_cap, or the service's --memory-cap"};
+      break;
+    case ChildEndKind::kCpuTime:
+      problem = {507, "cpu-limit", end.reason, "",
+                 fmt::format("ask for less in one job, or raise the service's --cpu-cap; this job had {} s",
+                             needs.cpu_seconds)};
+      break;
+    case ChildEndKind::kKilled:
+      problem = {507, "killed", end.reason + ", and so was the attempt before", "",
+                 "the system's log tells whether memory ran out; if not, submit it again"};
+      break;
+    case ChildEndKind::kCrashed:
+      problem.code = "crashed";
+      problem.remedy = "please report it, with the inputs";
+      break;
+    default:
+      break;
+  }
   if (problem.detail.empty()) problem.detail = fmt::format("it ended with exit code {}", end.exit_code);
   return problem;
 }
@@ -128,6 +146,7 @@ void JobRunner::stop(std::chrono::milliseconds grace) {
 }
 
 void JobRunner::run() {
+  std::string last_failure;  // said once, however often it comes
   while (true) {
     try {
       take_commands();
@@ -141,10 +160,12 @@ void JobRunner::run() {
       }
       if (stopping && active_.empty()) return;
       if (!stopping) start_some();
+      last_failure.clear();
       wait_and_look();
     } catch (const std::exception& error) {
-      parts_.log({"runner-failed", error.what(), "", LogLevel::kError});
-      std::this_thread::sleep_for(std::chrono::milliseconds(100));  // for want of memory, most likely
+      if (last_failure != error.what()) parts_.log({"runner-failed", error.what(), "", LogLevel::kError});
+      last_failure = error.what();
+      std::this_thread::sleep_for(kPause);
     }
   }
 }
@@ -158,7 +179,17 @@ void JobRunner::take_commands() {
     cancelled.swap(cancelled_);
     stop_now = stopping_ && Clock::now() >= stop_at_;
   }
-  for (const std::int64_t number : arrived) waiting_.push_back({number, {}, {}, false, {}});
+  for (const std::int64_t number : arrived) {
+    waiting_.emplace_back();
+    waiting_.back().number = number;
+  }
+  if (!cancelled.empty()) {
+    std::sort(cancelled.begin(), cancelled.end());
+    const auto is_cancelled = [&cancelled](const Waiting& waiting) {
+      return std::binary_search(cancelled.begin(), cancelled.end(), waiting.number);
+    };
+    waiting_.erase(std::remove_if(waiting_.begin(), waiting_.end(), is_cancelled), waiting_.end());
+  }
   for (Active& active : active_) {
     const bool wanted = std::find(cancelled.begin(), cancelled.end(), active.job.number) != cancelled.end();
     if (wanted) active.job.cancel_wanted = true;
@@ -235,7 +266,14 @@ std::optional<JobRunner::Prepared> JobRunner::prepare(Waiting waiting) {
     prepared.waiting.needs = needs_of_forecast(open.bytes(), open.all_plain(), parts_.share);
     prepared.waiting.needs_forecast = true;
   }
+  if (const Offset least = waiting.least_bytes; least > prepared.waiting.needs->memory_bytes) {
+    prepared.waiting.needs->memory_bytes = std::min(least, parts_.share.memory_bytes);
+  }
   prepared.active.needs = *prepared.waiting.needs;
+  // What a request limits itself is not raised.
+  prepared.active.most_bytes = !prepared.waiting.needs_forecast && has_option(*request, "memory_cap")
+                                   ? prepared.active.needs.memory_bytes
+                                   : parts_.share.memory_bytes;
   return prepared;
 }
 
@@ -282,6 +320,7 @@ void JobRunner::start(std::vector<Prepared> jobs) {
     prepared.active.job.started_ms = now_ms();
     prepared.active.job.memory_bytes = prepared.active.needs.memory_bytes;
     prepared.active.forecasting = prepared.waiting.needs_forecast;
+    prepared.active.waiting = prepared.waiting;
   }
   const Status written = parts_.journal.write([&](JobTable& table) {
     for (std::size_t k = 0; k < jobs.size(); ++k) {
@@ -447,11 +486,49 @@ void JobRunner::forecast_ended(Active active, const ChildEnd& end) {
   std::error_code failure;
   std::filesystem::remove_all(folder, failure);
   if (active.stop_asked) return;  // cancelled, or the service ends: it stays as the journal has it
+  Waiting& again = active.waiting;
+  again.needs.reset();
+  again.passed_over.reset();
+  ++again.forecasts.made;
   if (forecast) {
-    waiting_.push_front({active.job.number, {}, forecast, false, {}});
+    again.forecast = forecast;
+    again.least_bytes = 0;
+    waiting_.push_front(again);
     return;
   }
-  fail(active.job, problem_of(end), false);
+  if (const auto memory =
+          memory_of_next_attempt(end, again.forecasts, active.needs.memory_bytes, active.most_bytes)) {
+    again.least_bytes = *memory;
+    if (end.kind == ChildEndKind::kKilled) ++again.forecasts.lost;
+    parts_.log({"forecast-repeated", end.reason + "; once more", active.job.id, LogLevel::kWarning});
+    waiting_.push_front(again);
+    return;
+  }
+  fail(active.job, problem_of(end, active.needs), false);
+}
+
+/// Puts the job back into the queue, at its head, when it is worth another attempt.
+bool JobRunner::try_again(const Active& active, const ChildEnd& end) {
+  const auto memory = memory_of_next_attempt(end, {active.job.attempts, active.job.lost},
+                                             active.needs.memory_bytes, active.most_bytes);
+  if (!memory) return false;
+  JobRecord job = active.job;
+  bool queued = false;
+  const bool lost = end.kind == ChildEndKind::kKilled;
+  const Status status =
+      parts_.journal.write([&](JobTable& table) { queued = table.try_again(job.number, lost); });
+  if (!status.ok() || !queued) return false;
+  Waiting again = active.waiting;
+  again.needs.reset();
+  again.passed_over.reset();
+  again.least_bytes = *memory;
+  waiting_.push_front(again);
+  job.state = JobState::kQueued;
+  job.started_ms.reset();
+  parts_.log({"job-repeated", fmt::format("{}; once more with {} MiB", end.reason, *memory >> 20), job.id,
+              LogLevel::kWarning});
+  parts_.feed.publish("job", job.id, job_to_json(job, {}, false).dump());
+  return true;
 }
 
 void JobRunner::ended(Active active, const ChildEnd& end) {
@@ -471,9 +548,10 @@ void JobRunner::ended(Active active, const ChildEnd& end) {
     }
     return;
   }
+  if (!answered && !active.stop_asked && try_again(active, end)) return;
   job.exit_code = end.exit_code;
   job.state = answered ? JobState::kDone : active.stop_asked ? JobState::kCancelled : JobState::kFailed;
-  if (job.state == JobState::kFailed) job.problem = problem_of(end);
+  if (job.state == JobState::kFailed) job.problem = problem_of(end, active.needs);
   parts_.finisher.finish({job, folder_of(job), true, end.cpu_seconds});
 }
 

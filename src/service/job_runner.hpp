@@ -16,6 +16,7 @@
 
 #include "base/log_record.hpp"
 #include "jobs/child_process.hpp"
+#include "jobs/next_attempt.hpp"
 #include "service/event_feed.hpp"
 #include "service/input_store.hpp"
 #include "service/job_files.hpp"
@@ -72,11 +73,15 @@ class JobRunner {
     std::optional<JobForecast> forecast;
     bool needs_forecast = false;
     std::optional<Clock::time_point> passed_over;  ///< since when others were preferred
+    Offset least_bytes = 0;    ///< an earlier attempt, or forecast, met its limit with less
+    Attempts forecasts{0, 0};  ///< made and lost so far
   };
 
   struct Active {
     JobRecord job;
     JobNeeds needs;
+    Offset most_bytes = 0;  ///< that another attempt may use
+    Waiting waiting;        ///< as it was before it began
     OpenInputs inputs;
     std::optional<ChildProcess> child;
     bool forecasting = false, stop_asked = false;
@@ -101,6 +106,7 @@ class JobRunner {
   void wait_and_look();
   void look_after(Active& active);
   void ended(Active active, const ChildEnd& end);
+  bool try_again(const Active& active, const ChildEnd& end);
   void forecast_ended(Active active, const ChildEnd& end);
   void fail(JobRecord job, JobProblem problem, bool has_begun);
   void tell_progress(Active& active, const ChildProgress& progress);

@@ -10,7 +10,7 @@ namespace {
 constexpr const char* kColumns =
     "number, id, command, title, continues, request, state, created_ms, started_ms, finished_ms, attempts, "
     "cancel_wanted, memory_bytes, forecast_bytes, forecast_seconds, exit_code, headline, problem, files, "
-    "idempotency_key, request_digest";
+    "idempotency_key, request_digest, lost";
 
 /// Each step turns the tables of version k into those of version k + 1; never changed once released.
 constexpr const char* kSteps[kSchemaVersion] = {
@@ -51,6 +51,9 @@ constexpr const char* kSteps[kSchemaVersion] = {
        ALTER TABLE jobs ADD COLUMN request_digest TEXT;
        CREATE UNIQUE INDEX jobs_by_key ON jobs (idempotency_key) WHERE idempotency_key IS NOT NULL;
        CREATE INDEX jobs_by_continued ON jobs (continues) WHERE continues IS NOT NULL;)",
+    // Until then the attempts before the present one were those that a crash of the service cut short.
+    R"(ALTER TABLE jobs ADD COLUMN lost INTEGER NOT NULL DEFAULT 0;
+       UPDATE jobs SET lost = max(0, attempts - (state = 'running')) WHERE state IN ('queued', 'running');)",
 };
 
 std::string problem_to_json(const JobProblem& problem) {
@@ -103,6 +106,7 @@ JobRecord record_of(const Statement& row) {
   job.files = split(row.text(k++));
   job.idempotency_key = row.maybe_text(k++);
   job.request_digest = row.maybe_text(k++);
+  job.lost = static_cast<int>(row.whole(k++));
   return job;
 }
 
@@ -337,6 +341,16 @@ bool JobTable::put_back(std::int64_t number) {
              .run() == 1;
 }
 
+bool JobTable::try_again(std::int64_t number, bool lost) {
+  return database_
+             .statement(
+                 "UPDATE jobs SET state = 'queued', lost = lost + ?, started_ms = NULL WHERE number = ? AND "
+                 "state = 'running' AND NOT cancel_wanted")
+             .bind(std::int64_t{lost ? 1 : 0})
+             .bind(number)
+             .run() == 1;
+}
+
 bool JobTable::remove(const std::string& id) {
   return database_.statement("DELETE FROM jobs WHERE id = ? AND state NOT IN ('queued', 'running')")
              .bind(std::string_view(id))
@@ -355,7 +369,8 @@ std::vector<std::string> JobTable::remove_old(std::int64_t kept, std::int64_t mo
 }
 
 void JobTable::recover(std::int64_t now_ms) {
-  const JobProblem twice{500, "interrupted-twice", "the service ended twice while this job ran", "",
+  const JobProblem twice{500, "interrupted-twice",
+                         "it was cut short twice, this time by the end of the service", "",
                          "submit it again; if it ends the service, please report it"};
   database_
       .statement(
@@ -365,11 +380,18 @@ void JobTable::recover(std::int64_t now_ms) {
   database_
       .statement(
           "UPDATE jobs SET state = 'failed', finished_ms = ?, exit_code = 5, problem = ? WHERE "
-          "state = 'running' AND attempts >= 2")
+          "state = 'running' AND lost >= 1")
       .bind(now_ms)
       .bind(std::string_view(problem_to_json(twice)))
       .run();
-  database_.statement("UPDATE jobs SET state = 'queued', started_ms = NULL WHERE state = 'running'").run();
+  database_
+      .statement(
+          "UPDATE jobs SET state = 'queued', lost = lost + 1, started_ms = NULL WHERE state = 'running'")
+      .run();
+}
+
+void JobTable::touch() {
+  database_.execute(fmt::format("PRAGMA user_version = {}", kSchemaVersion));
 }
 
 void JobTable::put_input(const InputRecord& input) {

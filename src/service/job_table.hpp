@@ -11,7 +11,7 @@
 namespace stanchion::service {
 
 /// What version of the tables this program writes.
-inline constexpr int kSchemaVersion = 2;
+inline constexpr int kSchemaVersion = 3;
 
 /// Makes the tables, or brings those of an older version up to date, in one transaction. Throws
 /// DatabaseError; also when the tables are of a newer version.
@@ -59,15 +59,21 @@ class JobTable {
   bool want_cancel(const std::string& id);
   /// Running back to queued, the attempt not counted: the service was shut down.
   bool put_back(std::int64_t number);
+  /// Running back to queued for another attempt, `lost` when somebody killed this one. False when it does not
+  /// run, or is to be cancelled.
+  bool try_again(std::int64_t number, bool lost);
   /// False when it is there and has not ended.
   bool remove(const std::string& id);
 
   /// Deletes ended jobs until at most `kept` are left, the oldest first, `most` at a time; their ids.
   std::vector<std::string> remove_old(std::int64_t kept, std::int64_t most);
 
-  /// After a crash: what ran is queued for its second attempt, or fails after it; what was to be cancelled
-  /// is.
+  /// After a crash: what ran is queued once more, or fails if it has lost an attempt before; what was to be
+  /// cancelled is.
   void recover(std::int64_t now_ms);
+
+  /// Writes something that changes nothing, to see whether the disk takes it.
+  void touch();
 
   void put_input(const InputRecord& input);
   std::optional<InputRecord> find_input(const std::string& digest);

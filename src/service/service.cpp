@@ -28,11 +28,15 @@ OriginRules origin_rules(const ServiceOptions& options) {
   return rules;
 }
 
+/// A folder that is there already keeps its permissions: somebody may have named /tmp.
 Status make_folder(const std::string& path) {
   std::error_code failure;
-  fs::create_directories(path, failure);
-  if (!failure && ::chmod(path.c_str(), 0700) == 0) return {};
-  return Status::resource_limit("store", "this folder cannot be made", path, "name a folder with --store");
+  const bool is_new = fs::create_directories(path, failure);
+  if (!failure && is_new && ::chmod(path.c_str(), 0700) != 0) failure = {errno, std::generic_category()};
+  if (!failure && !fs::is_directory(path)) failure = std::make_error_code(std::errc::not_a_directory);
+  if (!failure) return {};
+  return Status::resource_limit("store", "this folder cannot be made: " + failure.message(), path,
+                                "name a folder where you may write with --store");
 }
 
 }  // namespace
@@ -113,13 +117,24 @@ Status Service::Parts::prepare() {
 Status Service::Parts::open_store() {
   if (Status status = make_folder(options.store); !status.ok()) return status;
   options.store = fs::canonical(options.store).string();
-  if (Status status = make_folder(options.store + "/jobs"); !status.ok()) return status;
-  lock = FileHandle(::open((options.store + "/lock").c_str(), O_RDWR | O_CREAT | O_CLOEXEC, 0600));
+  for (const char* folder : {"/jobs", "/inputs", "/analyses"}) {
+    if (Status status = make_folder(options.store + folder); !status.ok()) return status;
+  }
+  const auto open_private = [](const std::string& path) {
+    return FileHandle(::open(path.c_str(), O_RDWR | O_CREAT | O_CLOEXEC, 0600));
+  };
+  lock = open_private(options.store + "/lock");
+  // The table's file is made here so that nobody else may read it, and closed again before it is locked.
+  if (!lock || !open_private(options.store + "/jobs.sqlite")) {
+    return Status::resource_limit("store",
+                                  "this folder cannot be written: " + std::generic_category().message(errno),
+                                  options.store, "name a folder where you may write with --store");
+  }
   // Of this process alone: a child that was just forked does not hold it when the service is killed.
   struct flock whole {};
   whole.l_type = F_WRLCK;
   whole.l_whence = SEEK_SET;
-  if (!lock || ::fcntl(lock.get(), F_SETLK, &whole) != 0) {
+  if (::fcntl(lock.get(), F_SETLK, &whole) != 0) {
     return Status::resource_limit("store-in-use", "another service works on this store", options.store,
                                   "end it, or name another folder with --store");
   }

@@ -162,6 +162,7 @@ class JobTest(ServiceTest):
             ({"command": "check", "inputs": stiffness, "options": {"json": "/etc/x"}}, 400, "unknown-option"),
             ({"command": "check", "inputs": stiffness, "options": {"log": "/etc/x"}}, 400, "unknown-option"),
             ({"command": "check", "inputs": stiffness, "continues": 7}, 400, "bad-request"),
+            ({"command": "check", "inputs": stiffness, "options": {"title": "x" * 501}}, 400, "bad-request"),
             ({"command": "check", "inputs": {}}, 400, "bad-request"),
             ({"command": "specimen", "inputs": stiffness}, 400, "unknown-command"),
             ({"command": "recheck", "inputs": stiffness}, 400, "unknown-command"),

@@ -125,6 +125,63 @@ class CrashTest(ServiceTest):
         self.assertEqual(service.wait(quick)["exit_code"], 0)
         self.assertEqual(service.wait(slow)["state"], "cancelled")
 
+    def worker_of(self, service, job, attempt):
+        """The process that runs the job, once it does."""
+        until = time.monotonic() + 100
+        while time.monotonic() < until:
+            record = service.ask("GET", "/v1/jobs/" + job).json()
+            found = children(service.process.pid)
+            if (record["state"], record["attempts"]) == ("running", attempt) and found:
+                return found[0]
+            time.sleep(0.02)
+        raise AssertionError(record)
+
+    def test_a_worker_that_is_killed_is_replaced_once(self):
+        (self.models / "K.mtx").write_text(chain_text(9000))
+        service = self.serve()
+        sweep = {"command": "sweep", "inputs": {"stiffness": "models/K.mtx"}, "options": {"from": 0.1, "to": 3.9, "points": 50_000}}
+        job = service.submit(sweep)["id"]
+        first = self.worker_of(service, job, 1)
+        os.kill(first, signal.SIGKILL)
+        second = self.worker_of(service, job, 2)
+        self.assertNotEqual(first, second)
+        os.kill(second, signal.SIGKILL)
+        ended = service.wait(job)
+        self.assertEqual((ended["state"], ended["exit_code"], ended["attempts"]), ("failed", 4, 2))
+        self.assertEqual(ended["problem"]["code"], "killed")
+        self.assertIn("so was the attempt before", ended["problem"]["detail"])
+        # One that is cancelled in between is not begun again.
+        job = service.submit(sweep)["id"]
+        worker = self.worker_of(service, job, 1)
+        os.kill(worker, signal.SIGSTOP)
+        self.assertEqual(service.ask("POST", f"/v1/jobs/{job}/cancel", b"").status, 202)
+        os.kill(worker, signal.SIGKILL)
+        ended = service.wait(job)
+        self.assertEqual((ended["state"], ended["attempts"]), ("cancelled", 1))
+        self.assertEqual(service.stop(), 0)
+        log = service.log.read_text()
+        self.assertEqual(log.count("once more with"), 1, log)
+
+    def test_an_end_that_cannot_be_written_is_kept(self):
+        (self.models / "K.mtx").write_text(chain_text(9))
+        service = self.serve()
+        # As a full disk would, but for ends alone.
+        with sqlite3.connect(self.store / "jobs.sqlite") as table:
+            table.execute("CREATE TRIGGER full BEFORE UPDATE ON jobs WHEN new.state = 'done' BEGIN SELECT RAISE(ABORT, 'full'); END")
+        table.close()
+        job = service.submit({"command": "check", "inputs": {"stiffness": "models/K.mtx"}})["id"]
+        until = time.monotonic() + 60
+        while service.ask("GET", "/ready").status == 200 and "cannot be written yet" not in service.log.read_text() and time.monotonic() < until:
+            time.sleep(0.05)
+        self.assertEqual(service.ask("GET", "/v1/jobs/" + job).json()["state"], "running")
+        with sqlite3.connect(self.store / "jobs.sqlite") as table:
+            table.execute("DROP TRIGGER full")
+        table.close()
+        self.assertEqual(service.wait(job)["exit_code"], 0)
+        self.assertEqual(service.ask("GET", "/ready").status, 200)
+        self.assertEqual(service.stop(), 0)
+        self.assertEqual(service.log.read_text().count("cannot be written yet"), 1)
+
     def test_one_service_a_store(self):
         self.serve()
         with self.assertRaisesRegex(RuntimeError, "store-in-use"):

@@ -1,7 +1,9 @@
 // The job store: migration of an old database, transitions, recovery after a crash, one transaction for many.
 #include <gtest/gtest.h>
 
+#include <chrono>
 #include <filesystem>
+#include <future>
 #include <thread>
 
 #include "io/temp_folder.hpp"
@@ -78,6 +80,31 @@ TEST_F(Store, AnOldDatabaseKeepsItsJobs) {
   EXPECT_EQ(version.whole(0), kSchemaVersion);
 }
 
+/// What version 2 added.
+constexpr const char* kVersionTwo = R"(
+  ALTER TABLE jobs ADD COLUMN continues TEXT;
+  ALTER TABLE jobs ADD COLUMN idempotency_key TEXT;
+  ALTER TABLE jobs ADD COLUMN request_digest TEXT;
+  INSERT INTO jobs (id, command, request, state, created_ms, attempts) VALUES
+    ('first', 'check', '{}', 'running', 7, 1), ('second', 'check', '{}', 'running', 8, 2),
+    ('again', 'check', '{}', 'queued', 9, 1);
+  PRAGMA user_version = 2;)";
+
+TEST_F(Store, WhatACrashCostBeforeStaysKnown) {
+  Database database(path());
+  database.execute(kVersionOne);
+  database.execute(kVersionTwo);
+  migrate(database);
+  JobTable table(database);
+  EXPECT_EQ(table.find("first")->lost, 0);
+  EXPECT_EQ(table.find("second")->lost, 1);
+  EXPECT_EQ(table.find("again")->lost, 1);
+  EXPECT_EQ(table.find("waits")->lost, 0);
+  table.recover(50);
+  EXPECT_EQ(table.find("first")->state, JobState::kQueued);
+  EXPECT_EQ(table.find("second")->state, JobState::kFailed);
+}
+
 TEST_F(Store, ADatabaseOfALaterProgramIsLeftAlone) {
   { Database(path()).execute("PRAGMA user_version = 99"); }
   const auto journal = JobJournal::open(path());
@@ -151,6 +178,25 @@ TEST_F(Store, ACrashCostsOneAttempt) {
   EXPECT_EQ(table.find("queued")->attempts, 0);
 }
 
+TEST_F(Store, AnAttemptForWantOfMemoryIsNotLost) {
+  Database database(path());
+  migrate(database);
+  JobTable table(database);
+  JobRecord job = job_named("one");
+  ASSERT_TRUE(table.insert(job));
+  EXPECT_FALSE(table.try_again(job.number, true)) << "it does not run";
+  ASSERT_TRUE(table.begin(job));
+  EXPECT_TRUE(table.try_again(job.number, false));
+  EXPECT_EQ(table.find("one")->state, JobState::kQueued);
+  EXPECT_EQ(table.find("one")->attempts, 1);
+  ASSERT_TRUE(table.begin(job));
+  table.recover(50);
+  EXPECT_EQ(table.find("one")->state, JobState::kQueued) << "its first crash";
+  ASSERT_TRUE(table.begin(job));
+  ASSERT_TRUE(table.want_cancel("one"));
+  EXPECT_FALSE(table.try_again(job.number, true)) << "it is to be cancelled";
+}
+
 TEST_F(Store, TheOldestEndedJobsGoFirst) {
   Database database(path());
   migrate(database);
@@ -191,6 +237,37 @@ TEST_F(Store, ManyChangesAtATimeShareTransactions) {
   const Status failed = (*journal)->write([](JobTable&) { throw DatabaseError("no", true); });
   EXPECT_EQ(failed.code(), "disk-full");
   EXPECT_FALSE((*journal)->figures().healthy);
+}
+
+TEST_F(Store, ABadChangeFailsAlone) {
+  auto journal = JobJournal::open(path());
+  ASSERT_TRUE(journal.ok());
+  // While the first one is being written the others gather, and share the next transaction.
+  std::promise<void> begun, others;
+  std::vector<std::thread> threads;
+  threads.emplace_back([&] {
+    EXPECT_TRUE((*journal)
+                    ->write([&](JobTable&) {
+                      begun.set_value();
+                      others.get_future().wait();
+                    })
+                    .ok());
+  });
+  begun.get_future().wait();
+  threads.emplace_back(
+      [&] { EXPECT_FALSE((*journal)->write([](JobTable&) { throw std::runtime_error("a defect"); }).ok()); });
+  for (const char* id : {"one", "two"}) {
+    threads.emplace_back([&, id] {
+      JobRecord job = job_named(id);
+      bool inserted = false;
+      EXPECT_TRUE((*journal)->write([&](JobTable& table) { inserted = table.insert(job); }).ok());
+      EXPECT_TRUE(inserted);
+    });
+  }
+  std::this_thread::sleep_for(std::chrono::milliseconds(100));
+  others.set_value();
+  for (std::thread& thread : threads) thread.join();
+  EXPECT_TRUE((*journal)->read([&](JobTable& table) { EXPECT_EQ(table.list({}, 1, {}).total, 2); }).ok());
 }
 
 }  // namespace
