@@ -4,6 +4,7 @@
 #include <cstddef>
 #include <vector>
 
+#include "base/long_vector.hpp"
 #include "numeric/block_kernels.hpp"
 #include "stanchion/types.hpp"
 
@@ -12,7 +13,7 @@ namespace stanchion {
 /// `count` vectors (a multiple of kBlockVectors) of `rows` entries, stored row by row.
 struct Columns {
   Index rows = 0, count = 0;
-  std::vector<double> values;
+  LongVector<double> values;
 
   Columns() = default;
   Columns(Index row_count, Index columns)
@@ -32,7 +33,7 @@ inline Index whole_blocks(Index number) {
 /// Calls use(block) on a copy of every eight columns, each kBlockVectors doubles a row, and puts the block
 /// back. `block`: space for it, kept by whoever calls often.
 template <class Use>
-void each_block(Columns& columns, std::vector<double>& block, const Use& use) {
+void each_block(Columns& columns, LongVector<double>& block, const Use& use) {
   if (columns.count == kBlockVectors) {
     use(columns.values.data());
     return;

@@ -49,7 +49,7 @@ class KeptFactor {
 
   const Factor& factor_;
   BlockSolver solver_;
-  std::vector<double> block_;  ///< eight columns of what is solved for
+  LongVector<double> block_;  ///< eight columns of what is solved for
 };
 
 }  // namespace stanchion

@@ -5,8 +5,10 @@
 #include <algorithm>
 #include <cmath>
 #include <numeric>
+#include <tuple>
 
 #include "base/counter_random.hpp"
+#include "base/ranges.hpp"
 #include "diagnose/held_motions.hpp"
 #include "diagnose/shares.hpp"
 
@@ -14,6 +16,7 @@ namespace stanchion {
 namespace {
 
 constexpr Index kVectors = 32;
+constexpr Offset kRowsAPiece = 4096;  ///< of a block, for one thread
 
 struct PartsJudged {
   std::vector<char> judged;                       ///< by part
@@ -48,19 +51,24 @@ PartsJudged parts_to_judge(const Evidence& e) {
 /// The digits of every position; -1 for parts that are not judged.
 std::vector<double> estimate(Evidence& e, const std::vector<char>& judged, const HeldMotions& held) {
   std::vector<double> sum(static_cast<std::size_t>(e.s.rows), 0.0);
+  Columns w(e.s.rows, kBlockVectors);
+  const auto for_rows = [&](const auto& work) {
+    for_ranges(e.pool, e.s.rows, kRowsAPiece, [&](Offset begin, Offset end) {
+      for (auto i = static_cast<Index>(begin); i < end; ++i) work(i, w.row(i));
+    });
+  };
   for (Index done = 0; done < kVectors; done += kBlockVectors) {
-    Columns w(e.s.rows, kBlockVectors);
     const CounterRandom random(e.in.seed, 0x616363757261ULL + static_cast<std::uint64_t>(done));
-    for (std::size_t k = 0; k < w.values.size(); k += 2) {
-      const auto [a, b] = random.gaussians(k / 2);
-      w.values[k] = a;
-      w.values[k + 1] = b;
-    }
+    for_rows([&](Index i, double* row) {
+      const auto number = static_cast<std::uint64_t>(Offset{i} * kBlockVectors / 2);
+      for (Index v = 0; v < kBlockVectors; v += 2)
+        std::tie(row[v], row[v + 1]) = random.gaussians(number + static_cast<std::uint64_t>(v / 2));
+    });
     e.factor.half_solve(w);
     held.apply(w);
-    for (Index i = 0; i < e.s.rows; ++i) {
-      for (Index v = 0; v < kBlockVectors; ++v) sum[static_cast<std::size_t>(i)] += w.row(i)[v] * w.row(i)[v];
-    }
+    for_rows([&](Index i, const double* row) {
+      for (Index v = 0; v < kBlockVectors; ++v) sum[static_cast<std::size_t>(i)] += row[v] * row[v];
+    });
   }
   for (std::size_t i = 0; i < sum.size(); ++i) {
     // k_ii (K^-1)_ii is at least 1 for a positive definite matrix.

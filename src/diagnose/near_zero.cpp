@@ -6,30 +6,34 @@
 #include <utility>
 
 #include "base/counter_random.hpp"
+#include "base/ranges.hpp"
 
 namespace stanchion {
 namespace {
 
 constexpr int kMostRounds = 8;
+constexpr Offset kRowsAPiece = 4096;  ///< of a block, for one thread
 /// A residual that rounding alone explains, and the relative accuracy asked of a value above that.
 constexpr double kRoundingResidual = 3e-15, kRelativeResidual = 1e-4;
 constexpr double kRoughResidual = 0.1;  ///< of the first pair behind the gap
 constexpr double kGapInSight = 20;      ///< estimates from above only bring values closer together
 
 /// `start`, and random columns after it.
-Columns filled_up(Columns start, Index rows, Index count, std::uint64_t seed) {
+Columns filled_up(Columns start, Index rows, Index count, std::uint64_t seed, ThreadPool& pool) {
   Columns x(rows, count);
   const CounterRandom random(seed, 0x6c6f63617465ULL + static_cast<std::uint64_t>(start.count));
   const Index fresh = count - start.count;  // a multiple of eight
-  for (Index i = 0; i < rows; ++i) {
-    double* row = x.row(i);
-    if (start.count > 0) std::copy_n(start.row(i), start.count, row);
-    const auto number = static_cast<std::uint64_t>(Offset{i} * fresh / 2);
-    for (Index v = 0; v < fresh; v += 2) {
-      std::tie(row[start.count + v], row[start.count + v + 1]) =
-          random.gaussians(number + static_cast<std::uint64_t>(v / 2));
+  for_ranges(pool, rows, kRowsAPiece, [&](Offset begin, Offset end) {
+    for (auto i = static_cast<Index>(begin); i < end; ++i) {
+      double* row = x.row(i);
+      if (start.count > 0) std::copy_n(start.row(i), start.count, row);
+      const auto number = static_cast<std::uint64_t>(Offset{i} * fresh / 2);
+      for (Index v = 0; v < fresh; v += 2) {
+        std::tie(row[start.count + v], row[start.count + v + 1]) =
+            random.gaussians(number + static_cast<std::uint64_t>(v / 2));
+      }
     }
-  }
+  });
   return x;
 }
 
@@ -79,8 +83,8 @@ NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix,
                         const std::vector<NodeMotion>& motions, const NearZeroOptions& options, Columns start,
                         ThreadPool& pool) {
   NearZero found;
-  found.x = filled_up(std::move(start), structure.rows, options.columns, options.seed);
-  std::vector<double> scratch;
+  found.x = filled_up(std::move(start), structure.rows, options.columns, options.seed, pool);
+  LongVector<double> scratch;
   Columns product;
   for (Index part = 0; part < structure.parts; ++part) found.parts.push_back({part, 0, {}});
   remove(motions, structure, found.x);
@@ -102,7 +106,7 @@ NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix,
     if (open <= 1 || (round > 2 && !(open < before / 2))) break;
     before = open;
   }
-  std::vector<double>().swap(scratch);
+  LongVector<double>().swap(scratch);
   multiply_extended(matrix, found.x, product, pool);
   project_all(structure, found, product);
   return found;

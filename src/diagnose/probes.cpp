@@ -3,13 +3,15 @@
 #include <algorithm>
 #include <cmath>
 
+#include "base/ranges.hpp"
 #include "diagnose/rigid_motion.hpp"
 
 namespace stanchion {
 namespace {
 
-constexpr double kPush = -1e-10;    ///< force over k_ii from which a push counts
-constexpr double kIsolated = 1e-6;  ///< what neighbours may feel of it
+constexpr double kPush = -1e-10;      ///< force over k_ii from which a push counts
+constexpr double kIsolated = 1e-6;    ///< what neighbours may feel of it
+constexpr Offset kRowsAPiece = 4096;  ///< for one thread
 constexpr std::size_t kMostCandidates = 32;
 constexpr double kSwamps = 1e3;  ///< times the median diagonal: stiff enough to be a penalty
 
@@ -53,16 +55,18 @@ RigidProbe probe_rigid_motions(const Structure& s, const ShiftedMatrix& matrix, 
   probe.turns = s.placed;
   probe.motion = Columns(s.rows, kBlockVectors);
   const std::vector<PartPlace> places = places_of_parts(s);
-  for (Index row = 0; row < s.rows; ++row) {
-    const auto node = static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(row)]);
-    const PartPlace& part = places[static_cast<std::size_t>(s.part_of[node])];
-    const bool turns = s.placed && s.has_place[node];
-    for (std::size_t k = 0; k < (turns ? 6 : 3); ++k) {
-      RigidMotion motion;
-      (k < 3 ? motion.t[k] : motion.w[k - 3]) = k < 3 ? 1 : 1 / part.radius;
-      probe.motion.row(row)[k] = rigid_value(s, row, part.centre, motion) / (*matrix.scale)[row];
+  for_ranges(pool, s.rows, kRowsAPiece, [&](Offset begin, Offset end) {
+    for (auto row = static_cast<Index>(begin); row < end; ++row) {
+      const auto node = static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(row)]);
+      const PartPlace& part = places[static_cast<std::size_t>(s.part_of[node])];
+      const bool turns = s.placed && s.has_place[node];
+      for (std::size_t k = 0; k < (turns ? 6 : 3); ++k) {
+        RigidMotion motion;
+        (k < 3 ? motion.t[k] : motion.w[k - 3]) = k < 3 ? 1 : 1 / part.radius;
+        probe.motion.row(row)[k] = rigid_value(s, row, part.centre, motion) / (*matrix.scale)[row];
+      }
     }
-  }
+  });
   probe.force = times_extended(matrix, probe.motion, pool);
   return probe;
 }

@@ -28,13 +28,13 @@ std::vector<DofShare> ranked(const Structure& s, const std::vector<Index>& rows,
   std::vector<std::size_t> order(rows.size());
   std::iota(order.begin(), order.end(), std::size_t{0});
   const auto keep = std::min(most, order.size());
-  std::stable_sort(order.begin(), order.end(),
-                   [&](std::size_t a, std::size_t b) { return share[a] > share[b]; });
+  const std::size_t sorted = std::min(order.size(), 4 * keep + 64);
+  std::partial_sort(
+      order.begin(), order.begin() + static_cast<std::ptrdiff_t>(sorted), order.end(),
+      [&](std::size_t a, std::size_t b) { return share[a] != share[b] ? share[a] > share[b] : a < b; });
   // Shares that differ in rounding only come in the order of the equations.
   std::size_t shown = keep;
-  while (shown < order.size() && shown < 4 * keep + 64 &&
-         share[order[shown]] > share[order[keep - 1]] * (1 - 1e-9))
-    ++shown;
+  while (shown < sorted && share[order[shown]] > share[order[keep - 1]] * (1 - 1e-9)) ++shown;
   for (std::size_t begin = 0; begin < shown;) {
     std::size_t end = begin + 1;
     while (end < shown && share[order[end]] > share[order[begin]] * (1 - 1e-9)) ++end;

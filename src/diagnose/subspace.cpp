@@ -82,7 +82,7 @@ Columns times(const ShiftedMatrix& matrix, const Columns& x, Index from) {
 
 void multiply_extended(const ShiftedMatrix& matrix, const Columns& x, Columns& y, ThreadPool& pool) {
   y = x;
-  std::vector<double> product(static_cast<std::size_t>(x.rows) * kBlockVectors), block;
+  LongVector<double> product(static_cast<std::size_t>(x.rows) * kBlockVectors), block;
   each_block(y, block, [&](double* eight) {
     extended_times(matrix, eight, product.data(), pool);
     std::copy(product.begin(), product.end(), eight);
@@ -96,11 +96,11 @@ Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool
 }
 
 Index orthonormalise(Columns& x, RowGroup group) {
-  std::vector<double> scratch;
+  LongVector<double> scratch;
   return orthonormalise(x, group, scratch);
 }
 
-Index orthonormalise(Columns& x, RowGroup group, std::vector<double>& local) {
+Index orthonormalise(Columns& x, RowGroup group, LongVector<double>& local) {
   constexpr Index kWidth = 8;  // columns that go through the basis together
   const std::size_t n = group.size();
   const auto rows = static_cast<Index>(n);

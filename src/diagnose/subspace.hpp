@@ -26,7 +26,7 @@ using RowGroup = std::span<const Index>;
 /// Gram-Schmidt by blocks, twice, over the rows of `group` only. Columns that depend on earlier ones are
 /// dropped; what is left moves to the front, the rest of the group's rows becomes zero. Returns how many are
 /// left. `scratch` is space of its own, kept by whoever calls often: the group's rows of all columns.
-Index orthonormalise(Columns& x, RowGroup group, std::vector<double>& scratch);
+Index orthonormalise(Columns& x, RowGroup group, LongVector<double>& scratch);
 Index orthonormalise(Columns& x, RowGroup group);
 
 /// Ritz values of orthonormal columns x[0..used) with ax = A x over a group; the columns (and ax) are
