@@ -30,7 +30,7 @@ export function tick_text(value, step) {
 /// As many ticks as their labels leave room for over `pixels`, and on a wide axis not more than one in 110.
 export function ticks_with_room(low, high, pixels) {
   const letter = 7.5, gap = 16;
-  const most = Math.max(4, Math.floor(pixels / 110));
+  const most = Math.max(6, Math.floor(pixels / 110));
   for (let many = most; many > 2; many -= 1) {
     const found = ticks(low, high, many);
     const widest = Math.max(...found.list.map((at) => tick_text(at, found.step).length));
