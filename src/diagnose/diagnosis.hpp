@@ -26,7 +26,8 @@ struct DiagnosisInput {
   bool constraints_apply = true;  ///< false: multipliers act on each other
   LocateOptions options;
   std::uint64_t seed = 1;
-  bool may_sharpen = true;  ///< the matrix can be certified again with a smaller offset
+  bool may_sharpen = true;        ///< the matrix can be certified again with a smaller offset
+  bool resolution_given = false;  ///< by whoever asks: what is zero was not decided by the error bound
 };
 
 struct Diagnosis {

@@ -22,6 +22,7 @@ void Evidence::add(Direction direction, CauseFacts facts) {
   facts.energy = direction.energy;
   facts.motions = direction.motions;
   facts.placed = s.placed;
+  facts.resolution_given = in.resolution_given && direction.sign == 0;
   facts.named = s.named;
   direction.explanation = explanation_of(facts);
   direction.remedy = remedy_of(facts);

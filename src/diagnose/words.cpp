@@ -220,6 +220,8 @@ std::string remedy_of(const CauseFacts& f) {
     case Cause::kUnresolved:
       break;
   }
+  if (f.resolution_given)
+    return "Leave out --resolution, or give a smaller one: what is zero is then decided by the error bound.";
   return "Ask again with --precision extended (check), or clear the other causes first.";
 }
 

@@ -27,6 +27,7 @@ struct CauseFacts {
   std::string hangs;  ///< "node 12", "nodes 12, 13 and 6 more": at rest beside what moves; may be empty
   double energy = 0, stiffness = 0, digits = 0;
   std::string unresolved_because;
+  bool resolution_given = false;  ///< by whoever asked
 };
 
 std::string explanation_of(const CauseFacts& facts);

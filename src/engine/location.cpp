@@ -98,10 +98,11 @@ Result<CertifiedInertia> certify_and_locate(PreparedPencil& pencil, const Locati
     if (Status fits = forecast_locating(pencil, certified->inertia, rank, request, outcome); !fits.ok())
       return fits;
     const Stopwatch watch;
-    auto diagnosis = diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare,
-                               *kept, *certified, names, rank.least, rank.least == rank.most, rank.bordered,
-                               request.locate, pencil.seed(), round < kMostRounds && !request.resolution},
-                              pool);
+    auto diagnosis =
+        diagnose({pencil.analysis(), matrix, request.input.added.empty() ? nullptr : &bare, *kept, *certified,
+                  names, rank.least, rank.least == rank.most, rank.bordered, request.locate, pencil.seed(),
+                  round < kMostRounds && !request.resolution, request.resolution.has_value()},
+                 pool);
     seconds += watch.seconds();
     if (diagnosis.sharper_resolution) {
       resolution = diagnosis.sharper_resolution;

@@ -164,6 +164,11 @@ class BoeingReader {
             return Status::bad_input("number-overflow", name + " is larger than any double-precision number",
                                      place, "check the value");
           }
+          if (fault == NumberFault::kUnderflow) {
+            return Status::bad_input("number-underflow",
+                                     name + " is not zero, but smaller than any double-precision number",
+                                     place, "write 0 if zero is meant, or choose other units");
+          }
           if (fault == NumberFault::kNotFinite) {
             return Status::bad_input(
                 "not-finite", name + " is not a finite number", place,

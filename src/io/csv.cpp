@@ -150,6 +150,13 @@ bool CsvReader::real(std::string_view field, const char* what, double& value) {
   const NumberFault fault = scan_real(p, end, value);
   if (fault == NumberFault::kNone && p == end) return true;
   const bool not_finite = fault == NumberFault::kNotFinite;
+  if (fault == NumberFault::kUnderflow) {
+    fail("number-underflow",
+         "\"" + excerpt(field) + "\" is not zero, but smaller than any double-precision number, where " +
+             what + " should be",
+         "write 0 if zero is meant, or choose other units");
+    return false;
+  }
   fail(fault == NumberFault::kOverflow ? "number-overflow"
        : not_finite                    ? "not-finite"
                                        : "bad-number",

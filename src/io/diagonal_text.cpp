@@ -15,6 +15,11 @@ Status bad_value(NumberFault fault, std::string_view line, const std::string& pl
     return Status::bad_input("number-overflow", shown + " is larger than any double-precision number", place,
                              "check the value");
   }
+  if (fault == NumberFault::kUnderflow) {
+    return Status::bad_input("number-underflow",
+                             shown + " is not zero, but smaller than any double-precision number", place,
+                             "write 0 if zero is meant, or choose other units");
+  }
   if (fault == NumberFault::kNotFinite) {
     return Status::bad_input("not-finite", shown + " is not a finite number", place, "check the value");
   }

@@ -158,6 +158,10 @@ class LineParser {
       case NumberFault::kOverflow:
         return Status::bad_input("number-overflow", shown + " is larger than any double-precision number",
                                  place, "check the value, or choose units that keep stiffnesses below 1e300");
+      case NumberFault::kUnderflow:
+        return Status::bad_input("number-underflow",
+                                 shown + " is not zero, but smaller than any double-precision number", place,
+                                 "write 0 if zero is meant, or choose other units");
       case NumberFault::kNotFinite:
         return Status::bad_input("not-finite", shown + " is not a finite number", place,
                                  "find the element that produced it: often one of zero length or zero area");

@@ -186,6 +186,11 @@ class KeyedReader {
       return Status::bad_input("number-overflow", shown + " is larger than any double-precision number",
                                place, "check the value");
     }
+    if (fault == NumberFault::kUnderflow) {
+      return Status::bad_input("number-underflow",
+                               shown + " is not zero, but smaller than any double-precision number", place,
+                               "write 0 if zero is meant, or choose other units");
+    }
     if (fault == NumberFault::kNotFinite) {
       return Status::bad_input("not-finite", shown + " is not a finite number", place,
                                "find the element that produced it: often one of zero length or zero area");

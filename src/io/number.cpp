@@ -37,9 +37,8 @@ bool is_huge(std::string_view text) {
 
 NumberFault judge(std::errc error, const char* first, const char* last, double& value) {
   if (error == std::errc::result_out_of_range) {
-    if (is_huge({first, static_cast<std::size_t>(last - first)})) return NumberFault::kOverflow;
-    value = 0;
-    return NumberFault::kNone;
+    return is_huge({first, static_cast<std::size_t>(last - first)}) ? NumberFault::kOverflow
+                                                                    : NumberFault::kUnderflow;
   }
   return std::isfinite(value) ? NumberFault::kNone : NumberFault::kNotFinite;
 }

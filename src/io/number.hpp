@@ -10,6 +10,7 @@ enum class NumberFault {
   kMissing,     ///< no text where a number was expected
   kUnreadable,  ///< text that is not a number
   kOverflow,    ///< a number beyond the largest one that can be held
+  kUnderflow,   ///< one that is not zero but too small to be held
   kNotFinite,   ///< "nan" or "inf"
 };
 
@@ -43,7 +44,7 @@ inline NumberFault scan_whole(const char*& p, const char* end, Offset& value) {
 }
 
 /// Reads a real number (decimal, exponent letter e, E, d or D) at `p`, rounded to nearest, and moves `p` past
-/// it. A number too small to be held becomes zero, as rounding says.
+/// it. What is held below 1e-308 has fewer digits; what rounds to zero without being zero is a fault.
 NumberFault scan_real(const char*& p, const char* end, double& value);
 
 /// Like scan_real, for a field that must be a whole number; `exact` says whether it is held without rounding.

@@ -216,7 +216,8 @@ class Inspector {
     if (spread < kWideSpread) return;
     result_.warnings.push_back(
         {"diagonal-spread",
-         "the positive diagonal entries spread over a factor " + number_text(spread) + ", from " +
+         "the positive diagonal entries spread over a factor " +
+             (std::isfinite(spread) ? number_text(spread) : std::string("of more than 1e308")) + ", from " +
              number_text(facts.least_diagonal) + " at " + name(least_row_) + " to " +
              number_text(facts.greatest_diagonal) + " at " + name(greatest_row_) +
              ". Look for penalty stiffnesses and mixed units; use constraint equations in place of penalties",

@@ -77,6 +77,7 @@ TEST(MatrixMarket, NamesTheLineOfABadEntry) {
   expect_refused(kSymmetric + "2 2 2\n1 1\n2 2 1\n", "missing-field", "k.mtx:3");
   expect_refused(kSymmetric + "2 2 2\n1 1 1 1\n2 2 1\n", "extra-text", "k.mtx:3");
   expect_refused(kSymmetric + "2 2 2\n1 1 1\n2 2 1e999\n", "number-overflow", "k.mtx:4");
+  expect_refused(kSymmetric + "2 2 2\n1 1 1\n2 2 1e-999\n", "number-underflow", "k.mtx:4");
   expect_refused(kSymmetric + "2 2 2\n1 1 1\n2 2 inf\n", "not-finite", "k.mtx:4");
 }
 

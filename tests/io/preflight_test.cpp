@@ -44,6 +44,15 @@ TEST(Preflight, EachFindingHasItsCodePlaceAndRemedy) {
   EXPECT_EQ(report.warnings.size(), 6U);
 }
 
+TEST(Preflight, ASpreadBeyondTheLargestNumberIsSaidInWords) {
+  const auto report =
+      inspect(from_triplets(3, {{0, 0, 1e-200}, {1, 0, 1e-201}, {1, 1, 1e200}, {2, 1, 1}, {2, 2, 2}}));
+  const Warning* warning = testing::find_warning(report.warnings, "diagonal-spread");
+  ASSERT_NE(warning, nullptr);
+  EXPECT_NE(warning->message.find("of more than 1e308"), std::string::npos) << warning->message;
+  EXPECT_EQ(warning->message.find("inf"), std::string::npos) << warning->message;
+}
+
 TEST(Preflight, ManyPlacesAreSummarised) {
   const auto report = inspect(from_triplets(100000, {{0, 0, 2}}));
   ASSERT_EQ(report.warnings.size(), 1U);

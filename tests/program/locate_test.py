@@ -63,6 +63,8 @@ class LocateTest(ProgramTest):
             self.assertGreater(document["inertia"]["zero"], 0)
             self.assertEqual(sum(d["count"] for d in document["directions"] if d["sign"] == 0), document["inertia"]["zero"])
             self.assertEqual({d["kind"] for d in document["directions"]}, {"unresolved"})
+            for direction in document["directions"]:
+                self.assertEqual("--resolution" in direction["remedy"], direction["sign"] == 0)
 
     def test_weak_level(self):
         folder = self.specimen("solid", 600, "--fault", "soft-spring")
