@@ -31,6 +31,6 @@ install(FILES ${generated}/stanchion-config.cmake ${generated}/stanchion-config-
 
 # A static library passes on what it links; pkg-config wants that as one line.
 string(REPLACE ";" " " pkgconfig_libraries
-       "${METIS_LIBRARY};${AMD_LIBRARY};${LAPACK_LIBRARIES};${BLAS_LIBRARIES};${HDF5_LIBRARY}")
+       "${METIS_LIBRARY};${AMD_LIBRARY};${CAMD_LIBRARY};${LAPACK_LIBRARIES};${BLAS_LIBRARIES};${HDF5_LIBRARY}")
 configure_file(${CMAKE_CURRENT_SOURCE_DIR}/stanchion.pc.in ${generated}/stanchion.pc @ONLY)
 install(FILES ${generated}/stanchion.pc DESTINATION ${CMAKE_INSTALL_LIBDIR}/pkgconfig)

@@ -2,7 +2,6 @@
 
 #include <bit>
 #include <cmath>
-#include <vector>
 
 #include "base/counter_random.hpp"
 #include "sparse/product.hpp"
@@ -40,13 +39,13 @@ FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed, Thr
   const MatrixFamily& family = *matrix.family;
   FaultProbe probe{draw_signs(family.rows, seed, matrix.offset), Buffer<double>(family.rows, 0.0),
                    Buffer<double>(family.rows, 0.0)};
-  std::vector<TrackedSum> along_column(static_cast<std::size_t>(family.rows));
+  Buffer<TrackedSum> along_column(family.rows);
   for_both_triangles(
       pool, family.rows,
       [&](Index j) {
         TrackedSum sum;
         for_column_entries(matrix, j, [&](Index i, double value) { sum.add(value * probe.sign[i]); });
-        along_column[static_cast<std::size_t>(j)] = sum;
+        along_column[j] = sum;
       },
       [&](Index j) {
         for_column_entries(matrix, j, [&](Index i, double value) {
@@ -56,7 +55,7 @@ FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed, Thr
         });
       });
   for (Index i = 0; i < family.rows; ++i) {
-    const TrackedSum& sum = along_column[static_cast<std::size_t>(i)];
+    const TrackedSum& sum = along_column[i];
     probe.product[i] += sum.value;
     probe.product_error[i] = (probe.product_error[i] + std::fabs(probe.product[i]) + sum.sizes) * kUnit;
   }

@@ -12,7 +12,7 @@ struct Components {
 };
 Components connected_components(const Graph& graph);
 
-/// The subgraph on `vertices` (ascending), renumbered 0, 1, ... in that order. `local_number` of a neighbour
+/// The subgraph on `count` `vertices`, renumbered 0, 1, ... in that order. `local_number` of a neighbour
 /// outside is negative, and the edge to it left out.
 Graph subgraph(const Graph& graph, const Buffer<Index>& local_number, const Index* vertices, Index count);
 

@@ -12,12 +12,14 @@
 
 #include "base/threads.hpp"
 #include "order/components.hpp"
+#include "order/minimum_degree.hpp"
 
 namespace stanchion {
 namespace {
 
 constexpr Index kWholeUpTo = 3'000;  // vertices that one call of METIS orders without a cut of ours
-constexpr int kLevels = 4;           // of cuts: 16 parts keep as many threads busy
+constexpr int kLevels = 4;     // of cuts: 16 parts keep as many threads busy; thin parts are cut further
+constexpr double kThin = 1.5;  // most (separator vertices)^2 a vertex of a surface; bodies have 2 to 50
 
 /// A graph in METIS's index width.
 struct MetisGraph {
@@ -45,6 +47,7 @@ struct Part {
   std::vector<Index> vertices;  ///< in the whole graph, ascending
   Index place = 0;
   bool whole = false;  ///< not to be cut further
+  bool thin = false;   ///< a piece of a surface or a line: the cut that made it was short
 };
 
 Status out_of_memory() {
@@ -61,6 +64,31 @@ Status order_whole(const Part& part, Buffer<Index>& vertex_at) {
   if (status != METIS_OK) return out_of_memory();
   for (std::size_t k = 0; k < order.size(); ++k) {
     vertex_at[part.place + static_cast<Index>(k)] = part.vertices[static_cast<std::size_t>(order[k])];
+  }
+  return {};
+}
+
+/// Orders a thin part by minimum degree with its neighbours in the `whole` graph around it, which are
+/// eliminated later. A tenth of METIS's time and on surfaces as few operations, on bodies a fifth more.
+/// `local` has a negative number for every vertex of the whole graph, and is left so.
+Status order_thin(const Graph& whole, const Part& part, Buffer<Index>& local, Buffer<Index>& vertex_at) {
+  std::vector<Index> members = part.vertices;
+  const auto inside = static_cast<Index>(members.size());
+  for (Index k = 0; k < inside; ++k) local[members[static_cast<std::size_t>(k)]] = k;
+  for (const Index v : part.vertices) {
+    for (Offset e = whole.start[v]; e < whole.start[Offset{v} + 1]; ++e) {
+      const Index neighbour = whole.adjacency[e];
+      if (local[neighbour] >= 0) continue;
+      local[neighbour] = static_cast<Index>(members.size());
+      members.push_back(neighbour);
+    }
+  }
+  const Graph graph = subgraph(whole, local, members.data(), static_cast<Index>(members.size()));
+  for (const Index v : members) local[v] = -1;
+  auto order = minimum_degree_within(graph, inside);
+  if (!order.ok()) return order.status();
+  for (Index k = 0; k < inside; ++k) {
+    vertex_at[part.place + k] = part.vertices[static_cast<std::size_t>((*order)[k])];
   }
   return {};
 }
@@ -84,6 +112,8 @@ Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
     left_over.push_back(std::move(part));
     return {};
   }
+  const auto separator = static_cast<double>(chosen[2].size());
+  const bool thin = separator * separator <= kThin * part.graph.vertices;
   Index place = part.place;
   for (const std::size_t s : {0, 1}) {
     Buffer<Index> local(part.graph.vertices, -1);
@@ -94,6 +124,7 @@ Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
     }
     half.graph = subgraph(part.graph, local, chosen[s].data(), static_cast<Index>(chosen[s].size()));
     half.place = place;
+    half.thin = thin;
     place += half.graph.vertices;
     left_over.push_back(std::move(half));
   }
@@ -101,15 +132,17 @@ Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
   return {};
 }
 
-/// Calls work(k) for k in [0, pieces), by several threads where a pool is given; the first failure in order.
+/// Calls work(k, worker) for k in [0, pieces), by several threads where a pool is given; the first failure in
+/// order.
 template <class Work>
 Status for_all(ThreadPool* pool, std::size_t pieces, const Work& work) {
   std::vector<Status> found(pieces);
   if (pool != nullptr) {
-    pool->run(static_cast<Offset>(pieces),
-              [&](Offset k, int) { found[static_cast<std::size_t>(k)] = work(static_cast<std::size_t>(k)); });
+    pool->run(static_cast<Offset>(pieces), [&](Offset k, int worker) {
+      found[static_cast<std::size_t>(k)] = work(static_cast<std::size_t>(k), worker);
+    });
   } else {
-    for (std::size_t k = 0; k < pieces; ++k) found[k] = work(k);
+    for (std::size_t k = 0; k < pieces; ++k) found[k] = work(k, 0);
   }
   for (Status& status : found) {
     if (!status.ok()) return std::move(status);
@@ -117,8 +150,8 @@ Status for_all(ThreadPool* pool, std::size_t pieces, const Work& work) {
   return {};
 }
 
-bool to_be_cut(const Part& part) {
-  return !part.whole && part.graph.vertices > kWholeUpTo;
+bool to_be_cut(const Part& part, int level) {
+  return !part.whole && part.graph.vertices > kWholeUpTo && (level < kLevels || part.thin);
 }
 
 bool try_generator() {
@@ -149,12 +182,14 @@ Result<Buffer<Index>> nested_dissection(const Graph& graph, int threads) {
   for (Index v = 0; v < graph.vertices; ++v) parts[0].vertices[static_cast<std::size_t>(v)] = v;
   Buffer<Index> vertex_at(graph.vertices);
   std::unique_ptr<ThreadPool> pool;
-  if (threads > 1 && to_be_cut(parts[0]) && generator_is_per_thread())
+  if (threads > 1 && to_be_cut(parts[0], 0) && generator_is_per_thread())
     pool = std::make_unique<ThreadPool>(threads);
-  for (int level = 0; level < kLevels && std::any_of(parts.begin(), parts.end(), to_be_cut); ++level) {
+  for (int level = 0;; ++level) {
+    const auto large = [level](const Part& part) { return to_be_cut(part, level); };
+    if (std::none_of(parts.begin(), parts.end(), large)) break;
     std::vector<std::vector<Part>> left_over(parts.size());
-    Status done = for_all(pool.get(), parts.size(), [&](std::size_t k) {
-      if (to_be_cut(parts[k])) return cut(std::move(parts[k]), left_over[k], vertex_at);
+    Status done = for_all(pool.get(), parts.size(), [&](std::size_t k, int) {
+      if (large(parts[k])) return cut(std::move(parts[k]), left_over[k], vertex_at);
       left_over[k].push_back(std::move(parts[k]));
       return Status{};
     });
@@ -164,8 +199,13 @@ Result<Buffer<Index>> nested_dissection(const Graph& graph, int threads) {
   }
   std::stable_sort(parts.begin(), parts.end(),
                    [](const Part& a, const Part& b) { return a.graph.vertices > b.graph.vertices; });
-  Status done =
-      for_all(pool.get(), parts.size(), [&](std::size_t k) { return order_whole(parts[k], vertex_at); });
+  std::vector<Buffer<Index>> local(pool ? static_cast<std::size_t>(pool->size()) : 1);  // a worker
+  Status done = for_all(pool.get(), parts.size(), [&](std::size_t k, int worker) {
+    if (!parts[k].thin) return order_whole(parts[k], vertex_at);
+    Buffer<Index>& mine = local[static_cast<std::size_t>(worker)];
+    if (mine.empty()) mine = Buffer<Index>(graph.vertices, -1);
+    return order_thin(graph, parts[k], mine, vertex_at);
+  });
   if (!done.ok()) return done;
   return vertex_at;
 }

@@ -60,22 +60,19 @@ Result<PartOrder> order_part(const Graph& part, bool other_order, int threads) {
 
 /// Equations that share both a node group and a neighbourhood group.
 Grouping intersect(const Grouping& coarse, const Grouping& fine) {
-  const auto rows = static_cast<Index>(coarse.group_of.size());
-  std::vector<std::pair<Index, Index>> key(static_cast<std::size_t>(rows));
-  std::vector<Index> order(static_cast<std::size_t>(rows));
-  for (Index i = 0; i < rows; ++i) {
-    key[static_cast<std::size_t>(i)] = {coarse.group_of[i], fine.group_of[i]};
-    order[static_cast<std::size_t>(i)] = i;
-  }
-  std::stable_sort(order.begin(), order.end(), [&](Index a, Index b) {
-    return key[static_cast<std::size_t>(a)] < key[static_cast<std::size_t>(b)];
-  });
-  Grouping grouping{0, Buffer<Index>(rows)};
-  for (std::size_t k = 0; k < order.size(); ++k) {
-    const bool same =
-        k > 0 && key[static_cast<std::size_t>(order[k])] == key[static_cast<std::size_t>(order[k - 1])];
-    if (!same) ++grouping.groups;
-    grouping.group_of[order[k]] = grouping.groups - 1;
+  const Members members = members_of(coarse);
+  Grouping grouping{0, Buffer<Index>(coarse.group_of.size())};
+  std::vector<std::pair<Index, Index>> parts;  // of one node: neighbourhood group, equation
+  for (Index g = 0; g < coarse.groups; ++g) {
+    parts.clear();
+    for (Offset m = members.start[g]; m < members.start[Offset{g} + 1]; ++m) {
+      parts.emplace_back(fine.group_of[members.row[m]], members.row[m]);
+    }
+    std::sort(parts.begin(), parts.end());
+    for (std::size_t k = 0; k < parts.size(); ++k) {
+      if (k == 0 || parts[k].first != parts[k - 1].first) ++grouping.groups;
+      grouping.group_of[parts[k].second] = grouping.groups - 1;
+    }
   }
   return grouping;
 }
@@ -109,7 +106,7 @@ Result<Buffer<Index>> order_parts(const Graph& graph, const Components& componen
 /// Of everything that order_parts() looks at. The first line changes whenever its rules do.
 std::string digest_of(const Graph& graph, bool other_order) {
   Sha256 digest;
-  digest.update(other_order ? "order 2, minimum degree" : "order 2");
+  digest.update(other_order ? "order 3, minimum degree" : "order 3");
   const auto add = [&digest](const auto& buffer) {
     const auto count = static_cast<std::uint64_t>(buffer.size());
     digest.update({reinterpret_cast<const char*>(&count), sizeof count});

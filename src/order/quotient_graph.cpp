@@ -21,22 +21,28 @@ std::uint64_t mix(std::uint64_t x) {
 }
 
 /// Renumbers arbitrary group labels by first appearance.
-Grouping renumber(Index rows, const std::vector<Index>& label, Index labels) {
+Grouping renumber(Index rows, const Buffer<Index>& label, Index labels) {
   Grouping grouping{0, Buffer<Index>(rows)};
-  std::vector<Index> number(static_cast<std::size_t>(labels), -1);
+  Buffer<Index> number(labels, -1);
   for (Index i = 0; i < rows; ++i) {
-    Index& slot = number[static_cast<std::size_t>(label[static_cast<std::size_t>(i)])];
+    Index& slot = number[label[i]];
     if (slot < 0) slot = grouping.groups++;
     grouping.group_of[i] = slot;
   }
   return grouping;
 }
 
-/// Rows listed group by group: start (groups + 1) and rows.
-struct Members {
-  Buffer<Offset> start;
-  Buffer<Index> row;
-};
+/// Whether every row of column `j` is one of column `first`, told from the end of that column; equations of
+/// one node mostly have the same neighbours. False at times where it is so.
+bool repeats(const SymmetricMatrix& pattern, Index j, Index first) {
+  const Index* begin = pattern.row.data() + pattern.column_start[first];
+  const Index* end = pattern.row.data() + pattern.column_start[Offset{first} + 1];
+  const Index* mine = pattern.row.data() + pattern.column_start[j];
+  const Offset length = pattern.column_start[Offset{j} + 1] - pattern.column_start[j];
+  return length <= end - begin && std::equal(mine, mine + length, end - length);
+}
+
+}  // namespace
 
 Members members_of(const Grouping& grouping) {
   const auto rows = static_cast<Index>(grouping.group_of.size());
@@ -48,32 +54,31 @@ Members members_of(const Grouping& grouping) {
   return members;
 }
 
-}  // namespace
-
 Grouping group_by_neighbourhood(const SymmetricMatrix& pattern) {
   const Index n = pattern.rows;
-  std::vector<std::uint64_t> hash(static_cast<std::size_t>(n));
-  for (Index i = 0; i < n; ++i) hash[static_cast<std::size_t>(i)] = mix(static_cast<std::uint64_t>(i));
-  const std::vector<std::uint64_t> own = hash;
+  Buffer<std::uint64_t> hash(n);
+  for (Index i = 0; i < n; ++i) hash[i] = mix(static_cast<std::uint64_t>(i));
+  const Buffer<std::uint64_t> own = hash.clone();
   for (Index j = 0; j < n; ++j) {
     std::uint64_t sum = 0;
     for (Offset k = pattern.column_start[j]; k < pattern.column_start[Offset{j} + 1]; ++k) {
       const Index i = pattern.row[k];
       if (i == j) continue;
-      hash[static_cast<std::size_t>(i)] += own[static_cast<std::size_t>(j)];
-      sum += own[static_cast<std::size_t>(i)];
+      hash[i] += own[j];
+      sum += own[i];
     }
-    hash[static_cast<std::size_t>(j)] += sum;
+    hash[j] += sum;
   }
   // Equal hashes share a slot of an open table, at most half full; groups are numbered by first appearance.
   Grouping grouping{0, Buffer<Index>(n)};
   const std::size_t slots = std::bit_ceil(2 * static_cast<std::size_t>(n) + 1);
-  std::vector<Index> first(slots, -1);
+  Buffer<Index> first(static_cast<Offset>(slots), -1);
   for (Index i = 0; i < n; ++i) {
-    const std::uint64_t mine = hash[static_cast<std::size_t>(i)];
-    std::size_t slot = mine & (slots - 1);
-    while (first[slot] >= 0 && hash[static_cast<std::size_t>(first[slot])] != mine)
-      slot = (slot + 1) & (slots - 1);
+    const std::uint64_t mine = hash[i];
+    auto slot = static_cast<Offset>(mine & (slots - 1));
+    while (first[slot] >= 0 && hash[first[slot]] != mine) {
+      slot = static_cast<Offset>(static_cast<std::size_t>(slot + 1) & (slots - 1));
+    }
     if (first[slot] < 0) {
       first[slot] = i;
       grouping.group_of[i] = grouping.groups++;
@@ -89,7 +94,8 @@ Grouping group_by_node(Index rows, std::span<const Index> node_of) {
   const Offset numbers = rows == 0 ? 0 : Offset{*std::max_element(node_of.begin(), node_of.end())} + 1;
   if (numbers <= kNumbersPerRow * rows && numbers + rows <= std::numeric_limits<Index>::max()) {
     // Node numbers are labels as they are; equations that belong to none get labels of their own above them.
-    std::vector<Index> label(node_of.begin(), node_of.end());
+    Buffer<Index> label(rows);
+    std::copy(node_of.begin(), node_of.end(), label.begin());
     auto labels = static_cast<Index>(std::max<Offset>(numbers, 0));
     for (Index& mine : label) {
       if (mine < 0) mine = labels++;
@@ -101,13 +107,13 @@ Grouping group_by_node(Index rows, std::span<const Index> node_of) {
   std::stable_sort(order.begin(), order.end(), [&](Index a, Index b) {
     return node_of[static_cast<std::size_t>(a)] < node_of[static_cast<std::size_t>(b)];
   });
-  std::vector<Index> label(count);
+  Buffer<Index> label(rows);
   Index labels = 0;
   for (std::size_t k = 0; k < order.size(); ++k) {
     const Index node = node_of[static_cast<std::size_t>(order[k])];
     const bool same = k > 0 && node >= 0 && node == node_of[static_cast<std::size_t>(order[k - 1])];
     if (!same) ++labels;
-    label[static_cast<std::size_t>(order[k])] = labels - 1;
+    label[order[k]] = labels - 1;
   }
   return renumber(rows, label, labels);
 }
@@ -135,10 +141,10 @@ Grouping join_zero_diagonals(const SymmetricMatrix& pattern, Grouping grouping,
       }
     }
   }
-  std::vector<Index> label(grouping.group_of.begin(), grouping.group_of.end());
+  Buffer<Index> label = grouping.group_of.clone();
   for (Index i = 0; i < n; ++i) {
     if (partner[static_cast<std::size_t>(i)] != kNone) {
-      label[static_cast<std::size_t>(i)] = grouping.group_of[partner[static_cast<std::size_t>(i)]];
+      label[i] = grouping.group_of[partner[static_cast<std::size_t>(i)]];
     }
   }
   return renumber(n, label, grouping.groups);
@@ -147,35 +153,45 @@ Grouping join_zero_diagonals(const SymmetricMatrix& pattern, Grouping grouping,
 Graph quotient_graph(const SymmetricMatrix& pattern, const Grouping& grouping) {
   const Index groups = grouping.groups;
   const Members members = members_of(grouping);
-  // Pass 1: unique half edges as seen from the lower triangle, each in both directions (so at most twice).
-  std::vector<Index> half_from, half_to;
+  // Pass 1: the neighbours of each group as seen from the lower triangle, and how many each group gets when
+  // every edge is entered from both ends (so at most twice).
+  Buffer<Index> found(pattern.row.size());
+  Offset used = 0;
+  Buffer<Offset> found_start(Offset{groups} + 1, 0);
   std::vector<Index> seen(static_cast<std::size_t>(groups), -1);
   Buffer<Offset> count(Offset{groups} + 1, 0);
   for (Index g = 0; g < groups; ++g) {
+    Index scanned = -1;
     for (Offset m = members.start[g]; m < members.start[Offset{g} + 1]; ++m) {
       const Index j = members.row[m];
+      if (scanned >= 0 && repeats(pattern, j, scanned)) continue;
+      scanned = j;
       for (Offset k = pattern.column_start[j]; k < pattern.column_start[Offset{j} + 1]; ++k) {
         const Index h = grouping.group_of[pattern.row[k]];
         if (h == g || seen[static_cast<std::size_t>(h)] == g) continue;
         seen[static_cast<std::size_t>(h)] = g;
-        half_from.push_back(g);
-        half_to.push_back(h);
-        ++count[Offset{g} + 1];
+        found[used++] = h;
         ++count[Offset{h} + 1];
       }
     }
+    found_start[Offset{g} + 1] = used;
+    count[Offset{g} + 1] += found_start[Offset{g} + 1] - found_start[g];
   }
   for (Index g = 0; g < groups; ++g) count[Offset{g} + 1] += count[g];
   Buffer<Index> both(count[groups]);
   Buffer<Offset> next = count.clone();
-  for (std::size_t e = 0; e < half_from.size(); ++e) {
-    both[next[half_from[e]]++] = half_to[e];
-    both[next[half_to[e]]++] = half_from[e];
+  for (Index g = 0; g < groups; ++g) {
+    for (Offset e = found_start[g]; e < found_start[Offset{g} + 1]; ++e) {
+      const Index h = found[e];
+      both[next[g]++] = h;
+      both[next[h]++] = g;
+    }
   }
+  found.reset();
   // Pass 2: drop the pairs found from both sides.
   Graph graph{groups, Buffer<Offset>(Offset{groups} + 1), std::move(both), Buffer<Index>(groups)};
   std::fill(seen.begin(), seen.end(), -1);
-  Offset used = 0;
+  used = 0;
   graph.start[0] = 0;
   for (Index g = 0; g < groups; ++g) {
     for (Offset k = count[g]; k < count[Offset{g} + 1]; ++k) {

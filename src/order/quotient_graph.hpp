@@ -15,6 +15,13 @@ struct Grouping {
   Buffer<Index> group_of;
 };
 
+/// Rows listed group by group, ascending in each: start (groups + 1) and rows.
+struct Members {
+  Buffer<Offset> start;
+  Buffer<Index> row;
+};
+Members members_of(const Grouping& grouping);
+
 /// Equations with identical closed neighbourhoods (by 64-bit hash; a collision only costs fill) share a
 /// group. Cost: one pass over the entries and a sort of the equations.
 Grouping group_by_neighbourhood(const SymmetricMatrix& pattern);
@@ -31,7 +38,7 @@ Grouping join_zero_diagonals(const SymmetricMatrix& pattern, Grouping grouping,
                              std::span<const char> zero_diagonal);
 
 /// The graph whose vertices are groups, joined when any of their equations are coupled.
-/// Cost: about two passes over the entries. Memory: 8 bytes per quotient edge.
+/// Cost: about a pass over the entries. Memory: 8 bytes per quotient edge.
 Graph quotient_graph(const SymmetricMatrix& pattern, const Grouping& grouping);
 
 }  // namespace stanchion

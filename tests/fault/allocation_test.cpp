@@ -129,7 +129,8 @@ TEST(AllocationFailure, OneRefusedRequestInASolve) {
 }
 
 /// Which of two threads takes a piece of work is chance, and each grows its memory when it first takes one: a
-/// thread that slept through the first shift grows it in a later one. So the later shifts are counted together.
+/// thread that slept through the first shift grows it in a later one. So the later shifts are counted
+/// together.
 TEST(Allocation, LaterShiftsAllocateNextToNothing) {
   constexpr int kLater = 25;
   constexpr long kEach = 40;  // the result itself, and per thread what hands the pieces of work out

@@ -150,36 +150,63 @@ TEST(JoinZeroDiagonals, AnExplicitZeroEntryIsNoPartner) {
   EXPECT_EQ(join_zero_diagonals(matrix, group_by_node(2, alone), zero).groups, 2);
 }
 
+void expect_edges_of_the_groups(const SymmetricMatrix& matrix, const Grouping& grouping) {
+  const BoolMatrix edges = test::edges_of(matrix);
+  std::vector<std::set<Index>> expected(static_cast<std::size_t>(grouping.groups));
+  std::vector<Index> weight(static_cast<std::size_t>(grouping.groups), 0);
+  for (Index i = 0; i < matrix.rows; ++i) {
+    const Index g = grouping.group_of[i];
+    ++weight[static_cast<std::size_t>(g)];
+    for (Index j = 0; j < matrix.rows; ++j) {
+      const Index h = grouping.group_of[j];
+      if (g != h && edges(i, j)) expected[static_cast<std::size_t>(g)].insert(h);
+    }
+  }
+  const Graph graph = quotient_graph(matrix, grouping);
+  ASSERT_EQ(graph.vertices, grouping.groups);
+  ASSERT_EQ(graph.adjacency.size(), graph.start[graph.vertices]);
+  for (Index g = 0; g < graph.vertices; ++g) {
+    EXPECT_EQ(graph.weight[g], weight[static_cast<std::size_t>(g)]);
+    std::vector<Index> found;
+    for (Offset e = graph.start[g]; e < graph.start[Offset{g} + 1]; ++e) found.push_back(graph.adjacency[e]);
+    std::sort(found.begin(), found.end());
+    EXPECT_TRUE(std::equal(found.begin(), found.end(), expected[static_cast<std::size_t>(g)].begin(),
+                           expected[static_cast<std::size_t>(g)].end()));
+  }
+}
+
 TEST(QuotientGraph, HasTheEdgesOfTheGroupsOnceInBothDirections) {
   Random random(5);
   for (int round = 0; round < 60; ++round) {
     const SymmetricMatrix matrix = test::random_sparse(random, 2 + 2 * round, 3, 0.2, 0);
     std::vector<Index> node(static_cast<std::size_t>(matrix.rows));
     for (Index& v : node) v = static_cast<Index>(random() % (1 + node.size() / 2));
-    const Grouping grouping = group_by_node(matrix.rows, node);
-    const BoolMatrix edges = test::edges_of(matrix);
-    std::vector<std::set<Index>> expected(static_cast<std::size_t>(grouping.groups));
-    std::vector<Index> weight(static_cast<std::size_t>(grouping.groups), 0);
-    for (Index i = 0; i < matrix.rows; ++i) {
-      const Index g = grouping.group_of[i];
-      ++weight[static_cast<std::size_t>(g)];
-      for (Index j = 0; j < matrix.rows; ++j) {
-        const Index h = grouping.group_of[j];
-        if (g != h && edges(i, j)) expected[static_cast<std::size_t>(g)].insert(h);
+    expect_edges_of_the_groups(matrix, group_by_node(matrix.rows, node));
+  }
+}
+
+/// Columns of one node mostly end alike; some lack an entry, or have one more.
+TEST(QuotientGraph, OfNodesWhoseEquationsHaveAlmostTheSameNeighbours) {
+  Random random(6);
+  for (int round = 0; round < 60; ++round) {
+    const Index nodes = 4 + round / 4, each = 1 + round % 4, rows = nodes * each;
+    std::vector<Triplet> entries;
+    for (Index i = 0; i < rows; ++i) entries.push_back({i, i, 1});
+    for (Index a = 0; a < nodes; ++a) {
+      for (Index b = 0; b <= a; ++b) {
+        if (random() % 3 != 0) continue;
+        for (Index i = a * each; i < (a + 1) * each; ++i) {
+          for (Index j = b * each; j < (b + 1) * each; ++j) {
+            if (i > j && random() % 2 != 0) entries.push_back({i, j, 1});
+          }
+        }
       }
     }
-    const Graph graph = quotient_graph(matrix, grouping);
-    ASSERT_EQ(graph.vertices, grouping.groups);
-    ASSERT_EQ(graph.adjacency.size(), graph.start[graph.vertices]);
-    for (Index g = 0; g < graph.vertices; ++g) {
-      EXPECT_EQ(graph.weight[g], weight[static_cast<std::size_t>(g)]);
-      std::vector<Index> found;
-      for (Offset e = graph.start[g]; e < graph.start[Offset{g} + 1]; ++e)
-        found.push_back(graph.adjacency[e]);
-      std::sort(found.begin(), found.end());
-      EXPECT_TRUE(std::equal(found.begin(), found.end(), expected[static_cast<std::size_t>(g)].begin(),
-                             expected[static_cast<std::size_t>(g)].end()));
-    }
+    const SymmetricMatrix matrix = from_triplets(rows, entries);
+    std::vector<Index> node(static_cast<std::size_t>(rows));
+    for (Index i = 0; i < rows; ++i) node[static_cast<std::size_t>(i)] = i / each;
+    expect_edges_of_the_groups(matrix, group_by_node(rows, node));
+    expect_edges_of_the_groups(matrix, group_by_neighbourhood(matrix));
   }
 }
 
