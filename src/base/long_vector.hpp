@@ -1,4 +1,5 @@
-// A standard vector whose memory comes in large pages where it is long: for arrays that grow, shrink and are given back.
+// A standard vector whose memory comes in large pages where it is long: for arrays that grow, shrink and are
+// given back.
 #pragma once
 
 #include <cstddef>

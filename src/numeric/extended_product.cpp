@@ -43,7 +43,14 @@ void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, Thr
   const MatrixFamily& family = *matrix.family;
   const Buffer<double>& scales = *matrix.scale;
   const Offset size = Offset{family.rows} * kV;
-  Buffer<double> scaled(size);
+  // One piece of memory for the scaled vectors and two sums a range: large enough for large pages early.
+  Buffer<double> memory(size * (1 + 2 * kRanges));
+  double* const scaled = memory.data();
+  std::array<double*, kRanges> high, low;
+  for (std::size_t r = 0; r < kRanges; ++r) {
+    high[r] = scaled + size * static_cast<Offset>(1 + 2 * r);
+    low[r] = high[r] + size;
+  }
   for_ranges(pool, family.rows, kRowsAPiece, [&](Offset begin, Offset end) {
     for (Offset k = begin * kV; k < end * kV; ++k) scaled[k] = y[k] * scales[k / kV];
   });
@@ -51,14 +58,11 @@ void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, Thr
   for (const Buffer<double>& values : family.values) members.push_back(values.data());
   const DataColumns data{family.column_start.data(), family.row.data(), members.data(),
                          matrix.coefficients.data(), static_cast<Index>(members.size())};
-  std::array<Buffer<double>, kRanges> high, low;
   const std::array<Index, kRanges + 1> ends = equal_ranges(family);
   pool.run(kRanges, [&](Offset range, int) {
     const auto r = static_cast<std::size_t>(range);
-    high[r] = Buffer<double>(size, 0.0);
-    low[r] = Buffer<double>(size, 0.0);
-    block_kernels().extended_product(data, ends[r], ends[r + 1], scaled.data(), high[r].data(),
-                                     low[r].data());
+    std::fill_n(high[r], 2 * size, 0.0);
+    block_kernels().extended_product(data, ends[r], ends[r + 1], scaled, high[r], low[r]);
   });
   for_ranges(pool, family.rows, kRowsAPiece, [&](Offset begin, Offset end) {
     for (Offset k = begin * kV; k < end * kV; ++k) {
