@@ -240,7 +240,7 @@ export class AskForm {
       replace(this.answer, el("section", { class: "forecast", "aria-label": "Forecast" }, el("h2", null, `About ${seconds(forecast.seconds)} and ${bytes(forecast.peak_bytes_count)}`),
         facts([["equations", grouped(rows_analysed)], ["entries in the factor", grouped(forecast.factor_entries)],
           ["one factorization", `${seconds(forecast.factorization_seconds)}, ${Number((forecast.factor_flops / 1e9).toPrecision(3))} Gflop`],
-          ["memory, factor kept", bytes(forecast.peak_bytes_solve)], ["if that does not settle it", seconds(forecast.seconds_otherwise)], ["assuming", forecast.assumption]])));
+          ["memory, factor kept", bytes(forecast.peak_bytes_solve)], ["memory to locate", bytes(forecast.peak_bytes_locate)], ["if that does not settle it", seconds(forecast.seconds_otherwise)], ["assuming", forecast.assumption]])));
       announce(`Forecast: about ${seconds(forecast.seconds)} and ${bytes(forecast.peak_bytes_count)}.`);
     } catch (problem) {
       replace(this.answer, problem_box(problem));

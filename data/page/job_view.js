@@ -300,7 +300,7 @@ export class JobView {
   forecast_part(result) {
     const f = result.forecast;
     return band("Forecast", facts([["one count", `${seconds(f.seconds)}, ${counted(f.factorizations, "factorization")}`], ["if that does not settle it", seconds(f.seconds_otherwise)],
-      ["peak memory", `${bytes(f.peak_bytes_count)}; ${bytes(f.peak_bytes_solve)} with the factor kept`], ["factor", `${grouped(f.factor_entries)} entries, ${Number((f.factor_flops / 1e9).toPrecision(3))} Gflop`], ["assuming", f.assumption]]));
+      ["peak memory", `${bytes(f.peak_bytes_count)}; ${bytes(f.peak_bytes_solve)} with the factor kept${f.peak_bytes_locate ? `; ${bytes(f.peak_bytes_locate)} to locate` : ""}`], ["factor", `${grouped(f.factor_entries)} entries, ${Number((f.factor_flops / 1e9).toPrecision(3))} Gflop`], ["assuming", f.assumption]]));
   }
 
   causes_part(result) {

@@ -203,9 +203,11 @@ struct PathOutcome {
 struct ForecastOutcome {
   Offset factor_entries = 0;
   double factor_flops = 0;
-  Offset peak_bytes_count = 0;   ///< factor discarded
-  Offset peak_bytes_solve = 0;   ///< factor kept
-  double seconds = 0;            ///< of one count, as it is likely to be certified
+  Offset peak_bytes_count = 0;  ///< factor discarded
+  Offset peak_bytes_solve = 0;  ///< factor kept
+  Offset peak_bytes_locate =
+      0;               ///< factor kept, and the vectors of locating so many directions as are shown unasked
+  double seconds = 0;  ///< of one count, as it is likely to be certified
   double seconds_otherwise = 0;  ///< when that does not settle it
   double factorization_seconds = 0;
   Index factorizations = 0;     ///< of the likely way

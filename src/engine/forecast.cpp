@@ -1,6 +1,9 @@
 #include <fmt/format.h>
 
+#include <algorithm>
+
 #include "base/clock.hpp"
+#include "diagnose/diagnosis.hpp"
 #include "engine/host_rates.hpp"
 #include "engine/prepared_pencil.hpp"
 #include "extended/factorize.hpp"
@@ -61,6 +64,13 @@ Result<Outcome> run_forecast(const Request& request, const RunContext& context) 
   forecast.peak_bytes_count = outcome.memory.forecast;
   forecast.peak_bytes_solve = outcome.memory.forecast + with_allowance(structure.peak_bytes_solve) -
                               with_allowance(structure.peak_bytes_count);
+  const LocateOptions shown;  // as many directions as are shown unasked, of either kind
+  const Offset locating =
+      std::max(structure.peak_bytes_solve,
+               structure.stored_factor_entries * Offset{sizeof(double)} +
+                   diagnosis_bytes(pencil->analysis().tree.rows, shown.most, shown.most, shown));
+  forecast.peak_bytes_locate =
+      outcome.memory.forecast + with_allowance(locating) - with_allowance(structure.peak_bytes_count);
   forecast_time(*pencil, request, definite, forecast);
   outcome.forecast = forecast;
   finish_outcome(outcome, watch.seconds());

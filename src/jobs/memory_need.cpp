@@ -29,6 +29,12 @@ Offset need_from_size(Offset bytes) {
   return kProgram + kBytesForAByte * std::min(bytes, Offset{1} << 50);
 }
 
+bool locates(const JobRequest& request) {
+  return request.command == "locate" ||
+         std::any_of(request.options.begin(), request.options.end(),
+                     [](const JobOption& option) { return option.key == "locate"; });
+}
+
 JobRequest forecast_request(const JobRequest& request, const RequestRules& rules) {
   JobRequest forecast;
   forecast.id = request.id;
@@ -62,6 +68,7 @@ std::optional<Offset> need_from_forecast(const std::string& outcome, const JobRe
   // Brackets and audits keep a basis of vectors and a second factor beside the first.
   if (request.command == "bracket" || request.command == "audit")
     return keeping + (keeping - counting) + keeping / 4;
+  if (locates(request)) return std::max(keeping, bytes("peak_bytes_locate")) + keeping / 8;
   return keeping + keeping / 8;
 }
 

@@ -18,6 +18,9 @@ constexpr Offset kSmallInputBytes = Offset{2} << 20;
 /// From the size of the inputs alone: exact enough for small ones, and for what a forecast itself needs.
 Offset need_from_size(Offset bytes);
 
+/// Whether directions are located, which takes vectors beside the factor.
+bool locates(const JobRequest& request);
+
 /// The request that asks for the forecast of `request`: the same model, no question.
 JobRequest forecast_request(const JobRequest& request, const RequestRules& rules);
 

@@ -121,6 +121,7 @@ std::string to_csv(const Outcome& outcome) {
     table.row("forecast", "factor", "flops", outcome.forecast->factor_flops);
     table.row("forecast", "factor", "peak_bytes_count", std::to_string(outcome.forecast->peak_bytes_count));
     table.row("forecast", "factor", "peak_bytes_solve", std::to_string(outcome.forecast->peak_bytes_solve));
+    table.row("forecast", "factor", "peak_bytes_locate", std::to_string(outcome.forecast->peak_bytes_locate));
   }
   if (outcome.located) add_location(table, *outcome.located);
   for (const Warning& warning : outcome.warnings)

@@ -84,6 +84,10 @@ footer { border-top: 3px double var(--line); margin-top: .8rem; padding-top: .7r
   td.digest { min-width: 17rem; }
   .plates, .cause .columns { grid-template-columns: minmax(0, 1fr); } dl { grid-template-columns: 1fr; gap: 0; } dd { margin-bottom: .45rem; }
 }
+@media screen and (max-width: 30rem) {
+  .plates > svg.view:first-child text.v-label { font-size: 20px; stroke-width: 6px; }
+  .plates > svg.view:first-child .v-triad text, .plates > svg.view:first-child .v-bar text { font-size: 18px; }
+}
 @media print {
   :root { color-scheme: light; --paper: #fff; --sheet: #fff; --ink: #111; --soft: #444; --line: #bbb; --tint: #f6f5f2; --blue: #17608f;
     --orange: #c4560a; --ring: #7d1d4f; --clear: #17608f; --heed: #b2470a; --open: #6b5a2a; --f0: #d5dfe6; --f1: #9fc0d4; --f2: #5f9bc0; --f3: #2c6f9e; --f4: #b85a14; --f5: #7d1d4f; }

@@ -19,6 +19,7 @@ Json json_of(const ForecastOutcome& forecast) {
           {"factor_flops", json_of(forecast.factor_flops)},
           {"peak_bytes_count", forecast.peak_bytes_count},
           {"peak_bytes_solve", forecast.peak_bytes_solve},
+          {"peak_bytes_locate", forecast.peak_bytes_locate},
           {"seconds", json_of(forecast.seconds)},
           {"seconds_otherwise", json_of(forecast.seconds_otherwise)},
           {"factorization_seconds", json_of(forecast.factorization_seconds)},

@@ -19,8 +19,9 @@ void write_forecast(Page& page, const Outcome& outcome) {
   page.row("factor", fmt::format("{} entries, {}", grouped(forecast.factor_entries),
                                  flops_in_words(forecast.factor_flops)));
   page.row("memory",
-           fmt::format("{} to count (the factor is thrown away), {} to keep the factor",
-                       bytes_in_words(forecast.peak_bytes_count), bytes_in_words(forecast.peak_bytes_solve)));
+           fmt::format("{} to count (the factor is thrown away), {} to keep the factor, {} to locate",
+                       bytes_in_words(forecast.peak_bytes_count), bytes_in_words(forecast.peak_bytes_solve),
+                       bytes_in_words(forecast.peak_bytes_locate)));
   page.row("fronts", fmt::format("{}, the largest with {} rows", grouped(outcome.work.supernodes),
                                  grouped(outcome.work.largest_front)));
 }

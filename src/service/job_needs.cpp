@@ -4,6 +4,7 @@
 #include <cmath>
 #include <string>
 
+#include "jobs/memory_need.hpp"
 #include "model/byte_size.hpp"
 
 namespace stanchion::service {
@@ -81,12 +82,17 @@ JobNeeds needs_of_forecast(std::int64_t input_bytes, bool all_plain, const Machi
   return {std::min(bytes, share.memory_bytes), std::min<std::int64_t>(3600, share.cpu_seconds), 1};
 }
 
+Offset bytes_expected(const JobRequest& request, const JobForecast& forecast) {
+  return locates(request) ? std::max(forecast.bytes_solve, forecast.bytes_locate) : forecast.bytes_solve;
+}
+
 std::optional<JobNeeds> needs_of(const JobRequest& request, const JobForecast& forecast,
                                  const MachineShare& share) {
   const Offset least = forecast.bytes_count + 32 * kMebi;
   if (least > share.memory_bytes) return std::nullopt;
   JobNeeds needs;
-  const Offset comfortable = 128 * kMebi + forecast.bytes_solve + forecast.bytes_solve / 2;
+  const Offset keeping = bytes_expected(request, forecast);
+  const Offset comfortable = 128 * kMebi + keeping + keeping / 2;
   needs.memory_bytes = std::min(std::max(least, comfortable), share.memory_bytes);
   needs.threads = asked_threads(request).value_or(forecast.seconds > 0.5 ? share.processors : 1);
   needs.cpu_seconds =

@@ -14,6 +14,7 @@ struct JobForecast {
   Offset bytes_count = 0;  ///< counting alone
   Offset bytes_solve = 0;  ///< keeping the factor
   double seconds = 0;
+  Offset bytes_locate = 0;  ///< keeping the factor and vectors beside it
 };
 
 struct MachineShare {
@@ -35,6 +36,9 @@ std::optional<JobNeeds> needs_of_small(const JobRequest& request, std::int64_t i
 
 /// Of working out the forecast itself: the matrix in memory, some times over.
 JobNeeds needs_of_forecast(std::int64_t input_bytes, bool all_plain, const MachineShare& share);
+
+/// Memory that the job is forecast to take: more than the factor where directions are located.
+Offset bytes_expected(const JobRequest& request, const JobForecast& forecast);
 
 /// With a forecast; nothing when the job can never get what it needs.
 std::optional<JobNeeds> needs_of(const JobRequest& request, const JobForecast& forecast,

@@ -44,7 +44,8 @@ std::optional<JobForecast> read_forecast(const std::string& path) {
     return forecast.contains(key) && forecast[key].is_number() ? forecast[key].get<double>() : 0.0;
   };
   return JobForecast{static_cast<Offset>(number("peak_bytes_count")),
-                     static_cast<Offset>(number("peak_bytes_solve")), number("seconds")};
+                     static_cast<Offset>(number("peak_bytes_solve")), number("seconds"),
+                     static_cast<Offset>(number("peak_bytes_locate"))};
 }
 
 JobProblem problem_of(const ChildEnd& end, const JobNeeds& needs) {
@@ -245,7 +246,7 @@ std::optional<JobRunner::Prepared> JobRunner::prepare(Waiting waiting) {
   prepared.active.inputs = std::move(*inputs);
   const OpenInputs& open = prepared.active.inputs;
   if (waiting.forecast) {
-    prepared.active.job.forecast_bytes = waiting.forecast->bytes_solve;
+    prepared.active.job.forecast_bytes = bytes_expected(*request, *waiting.forecast);
     prepared.active.job.forecast_seconds = waiting.forecast->seconds;
     prepared.waiting.needs = needs_of(*request, *waiting.forecast, parts_.share);
     if (!prepared.waiting.needs) {

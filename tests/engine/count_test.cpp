@@ -238,6 +238,8 @@ TEST(Count, ForecastAnswersWithoutFactoring) {
   EXPECT_EQ(outcome.work.factorizations, 0);
   EXPECT_EQ(outcome.forecast->factor_entries, 2 * 200 - 1);  // a chain has no fill
   EXPECT_GE(outcome.forecast->peak_bytes_solve, outcome.forecast->peak_bytes_count);
+  // Vectors beside the factor: 24 and 16 columns at least, of 200 rows.
+  EXPECT_GE(outcome.forecast->peak_bytes_locate - outcome.forecast->peak_bytes_count, 40 * 200 * 8);
 }
 
 }  // namespace

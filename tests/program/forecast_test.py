@@ -14,6 +14,7 @@ class ForecastTest(ProgramTest):
         self.assertGreater(forecast["factor_flops"], 0)
         self.assertGreater(forecast["peak_bytes_count"], 0)
         self.assertGreaterEqual(forecast["peak_bytes_solve"], forecast["peak_bytes_count"])
+        self.assertGreater(forecast["peak_bytes_locate"], forecast["peak_bytes_solve"])
         self.assertEqual(document["work"]["factorizations"], 0)
 
     def test_an_indefinite_matrix_is_forecast_as_well(self):

@@ -142,8 +142,9 @@ Outcome counted_in_part() {
 Outcome forecast() {
   Outcome outcome = base("forecast", Question::kForecast);
   outcome.work.factorizations = 0;
-  outcome.forecast = ForecastOutcome{
-      12345678, 4.6e9, 12000000, 140000000, 0.42, 1.3, 0.42, 1, false, 2.5e10, "one factorization of 0.42 s"};
+  outcome.forecast =
+      ForecastOutcome{12345678, 4.6e9, 12000000, 140000000, 190000000, 0.42,
+                      1.3,      0.42,  1,        false,     2.5e10,    "one factorization of 0.42 s"};
   return outcome;
 }
 

@@ -29,6 +29,19 @@ TEST(Needs, ARequestMayLimitItself) {
   EXPECT_EQ(needs->memory_bytes, 1024 * kMebi);
 }
 
+TEST(Needs, LocatingHoldsVectorsBesideTheFactor) {
+  const JobForecast forecast{100 * kMebi, 200 * kMebi, 1, 1000 * kMebi};
+  JobRequest locate = asking({});
+  locate.command = "locate";
+  const JobRequest check = asking({{"locate", "--locate", "", OptionKind::kFlag}});
+  for (const JobRequest& request : {locate, check}) {
+    EXPECT_EQ(bytes_expected(request, forecast), 1000 * kMebi);
+    EXPECT_GE(needs_of(request, forecast, kShare)->memory_bytes, 1500 * kMebi);
+  }
+  EXPECT_EQ(bytes_expected(asking({}), forecast), 200 * kMebi);
+  EXPECT_LT(needs_of(asking({}), forecast, kShare)->memory_bytes, 1000 * kMebi);
+}
+
 TEST(Needs, WhatCanNeverFitIsKnown) {
   EXPECT_FALSE(needs_of(asking({}), {5000 * kMebi, 6000 * kMebi, 1}, kShare));
   const auto tight = needs_of(asking({}), {3000 * kMebi, 9000 * kMebi, 1}, kShare);
