@@ -59,6 +59,8 @@ figcaption { color: var(--soft); font-size: .87rem; margin-top: .3rem; }
 svg.view { width: 100%; height: auto; display: block; background: var(--tint); border-radius: 6px; }
 svg.chart { width: 100%; max-width: 46rem; height: auto; display: block; }
 svg text { fill: var(--ink); font: 12px system-ui, "Segoe UI", "DejaVu Sans", sans-serif; }
+.s-ground { fill: var(--sheet); } .s-rule { stroke: var(--line); } .s-axis { stroke: var(--soft); } .s-step { stroke: var(--blue); }
+.s-point { fill: var(--blue); } .s-jump { stroke: var(--open); }
 .v-link { fill: none; stroke: var(--soft); stroke-width: .7; opacity: .5; } .v-link.v-near { stroke-width: 1.3; opacity: .8; }
 .v-dot { fill: none; stroke: var(--soft); stroke-width: 2; stroke-linecap: round; opacity: .6; } .v-dot.v-near { stroke-width: 6; }
 .v-part { fill: none; stroke: var(--blue); stroke-width: 3.2; stroke-linecap: round; } .v-part.v-near { stroke-width: 8; }

@@ -64,10 +64,12 @@ class StaircasePicture {
         "role=\"img\" style=\"max-width:100%;height:auto\" font-family=\"sans-serif\" "
         "font-size=\"13\">\n<title>{2}</title>\n",
         kWidth, kHeight, escaped("Staircase: " + meaning));
-    svg_ += fmt::format("<rect width=\"{:g}\" height=\"{:g}\" fill=\"#ffffff\"/>\n", kWidth, kHeight);
+    svg_ += fmt::format("<rect class=\"s-ground\" width=\"{:g}\" height=\"{:g}\" fill=\"#ffffff\"/>\n",
+                        kWidth, kHeight);
     svg_ +=
         "<defs><pattern id=\"open\" width=\"6\" height=\"6\" patternUnits=\"userSpaceOnUse\" "
-        "patternTransform=\"rotate(45)\"><line x1=\"0\" y1=\"0\" x2=\"0\" y2=\"6\" stroke=\"#8a5a00\" "
+        "patternTransform=\"rotate(45)\"><line x1=\"0\" y1=\"0\" x2=\"0\" y2=\"6\" class=\"s-jump\" "
+        "stroke=\"#8a5a00\" "
         "stroke-width=\"2\"/></pattern></defs>\n";
     count_axis();
     shift_axis(axis);
@@ -99,14 +101,14 @@ class StaircasePicture {
   void count_axis() {
     const auto step = static_cast<Index>(std::max(1.0, tick_step(std::max<double>(most_, 1), 6)));
     for (Index count = 0; count <= most_; count += step) {
-      line(kLeft, y(count), kWidth - kRight, y(count), "stroke=\"#e2e2e2\"");
+      line(kLeft, y(count), kWidth - kRight, y(count), "class=\"s-rule\" stroke=\"#e2e2e2\"");
       text(kLeft - 8, y(count) + 4, "end", grouped(count));
     }
     text(kLeft - 8, kTop - 8, "end", "count");
   }
 
   void shift_axis(const std::string& axis) {
-    line(kLeft, y(0), kWidth - kRight, y(0), "stroke=\"#222222\"");
+    line(kLeft, y(0), kWidth - kRight, y(0), "class=\"s-axis\" stroke=\"#222222\"");
     if (logarithmic_) {
       const int parts = 4;
       for (int k = 0; k <= parts; ++k) {
@@ -124,7 +126,7 @@ class StaircasePicture {
   }
 
   void tick(double where, const std::string& words) {
-    line(where, y(0), where, y(0) + 5, "stroke=\"#222222\"");
+    line(where, y(0), where, y(0) + 5, "class=\"s-axis\" stroke=\"#222222\"");
     text(where, y(0) + 20, "middle", words);
   }
 
@@ -132,21 +134,23 @@ class StaircasePicture {
     for (std::size_t i = 1; i < points_.size(); ++i) {
       const StaircasePoint &a = points_[i - 1], &b = points_[i];
       if (a.count == b.count) {
-        line(x(a.shift), y(a.count), x(b.shift), y(b.count), "stroke=\"#0b5394\" stroke-width=\"2.5\"");
+        line(x(a.shift), y(a.count), x(b.shift), y(b.count),
+             "class=\"s-step\" stroke=\"#0b5394\" stroke-width=\"2.5\"");
         continue;
       }
       const double left = x(a.shift), right = std::max(x(b.shift), left + 1.5);
       const double top = y(std::max(a.count, b.count)), bottom = y(std::min(a.count, b.count));
       svg_ += fmt::format(
           "<rect x=\"{:.2f}\" y=\"{:.2f}\" width=\"{:.2f}\" height=\"{:.2f}\" fill=\"url(#open)\" "
-          "stroke=\"#8a5a00\">"
+          "class=\"s-jump\" stroke=\"#8a5a00\">"
           "<title>{}</title></rect>\n",
           left, top, right - left, bottom - top,
           escaped(fmt::format("{} between {} and {}", b.count - a.count, exact(a.shift), exact(b.shift))));
     }
     for (const StaircasePoint& point : points_) {
       svg_ += fmt::format(
-          "<circle cx=\"{:.2f}\" cy=\"{:.2f}\" r=\"3\" fill=\"#0b5394\"><title>{}</title></circle>\n",
+          "<circle class=\"s-point\" cx=\"{:.2f}\" cy=\"{:.2f}\" r=\"3\" "
+          "fill=\"#0b5394\"><title>{}</title></circle>\n",
           x(point.shift), y(point.count), escaped(fmt::format("{} at {}", point.count, exact(point.shift))));
     }
   }

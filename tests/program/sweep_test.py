@@ -1,6 +1,7 @@
 """stanchion sweep: the staircase, refinement, the picture, interruption and resumption."""
 
 import json
+import re
 import unittest
 import xml.etree.ElementTree
 
@@ -62,6 +63,19 @@ class SweepTest(ProgramTest):
         root = xml.etree.ElementTree.parse(self.folder / "steps.svg").getroot()
         self.assertTrue(root.tag.endswith("svg"))
         self.assertEqual(sum(element.tag.endswith("circle") for element in root.iter()), 4)
+
+    def test_the_picture_in_the_page_takes_its_colours_from_the_page(self):
+        # Else its words, which are the page's, cannot be read where the page is dark.
+        self.sweep(0, "--geometric", self.geometric, "--from", 0.5, "--to", 1.0, "--points", 4, "--html", "steps.html")
+        page = (self.folder / "steps.html").read_text()
+        drawing = next(part for part in re.findall(r"<svg.*?</svg>", page, re.DOTALL) if "<title>Staircase" in part)
+        coloured = [tag for tag in re.findall(r"<\w[^>]*>", drawing) if re.search("#[0-9a-f]{6}", tag)
+                    and not tag.startswith("<text")]
+        self.assertGreater(len(coloured), 10)
+        for tag in coloured:
+            name = re.search(r'class="(s-\w+)"', tag)
+            self.assertTrue(name, tag)
+            self.assertRegex(page, re.escape("." + name[1]) + r" \{ \w+: var\(")
 
     def test_the_small_picture_is_a_staircase(self):
         path = self.matrix("S.mtx", 4, diagonal([1.1, 2.1, 2.1, 3.1]))
