@@ -75,6 +75,14 @@ class JobRunner {
     std::optional<Clock::time_point> passed_over;  ///< since when others were preferred
     Offset least_bytes = 0;    ///< an earlier attempt, or forecast, met its limit with less
     Attempts forecasts{0, 0};  ///< made and lost so far
+
+    /// For another turn: what it needs is found anew, and its wait begins anew.
+    Waiting once_more() const {
+      Waiting again = *this;
+      again.needs.reset();
+      again.passed_over.reset();
+      return again;
+    }
   };
 
   struct Active {
@@ -111,6 +119,8 @@ class JobRunner {
   void fail(JobRecord job, JobProblem problem, bool has_begun);
   void tell_progress(Active& active, const ChildProgress& progress);
   std::string folder_of(const JobRecord& job) const { return parts_.jobs_folder + "/" + job.id; }
+
+  static constexpr const char* kForecastFile = "forecast.json";  ///< in a job's folder, while it is forecast
 
   RunnerParts parts_;
   int wake_ = -1;
