@@ -58,8 +58,8 @@ JobDigests DigestLanes::digests_of(const ListedJob* job) {
     found.digest = digest_of(request, files_, &stop_);
     if (!found.digest.ok()) return found;
     const auto model = digest_of(forecast_request(request, rules_), files_, &stop_);
-    const bool keeps_factors = request.command == "bracket" || request.command == "audit";
-    found.model = model.ok() ? *model + (keeps_factors ? "b" : locates(request) ? "l" : "") : *found.digest;
+    constexpr const char* kKindMark[] = {"", "l", "b"};
+    found.model = model.ok() ? *model + kKindMark[static_cast<int>(memory_kind(request))] : *found.digest;
   } catch (const std::exception& error) {
     found.digest = Status::resource_limit("out-of-memory", error.what(), job->request.id,
                                           "run fewer programs beside this one");

@@ -35,6 +35,11 @@ bool locates(const JobRequest& request) {
                      [](const JobOption& option) { return option.key == "locate"; });
 }
 
+MemoryKind memory_kind(const JobRequest& request) {
+  if (request.command == "bracket" || request.command == "audit") return MemoryKind::kBracket;
+  return locates(request) ? MemoryKind::kLocate : MemoryKind::kCount;
+}
+
 JobRequest forecast_request(const JobRequest& request, const RequestRules& rules) {
   JobRequest forecast;
   forecast.id = request.id;
@@ -65,10 +70,14 @@ std::optional<Offset> need_from_forecast(const std::string& outcome, const JobRe
   const Offset counting = bytes("peak_bytes_count"), keeping = std::max(counting, bytes("peak_bytes_solve"));
   if (counting <= 0) return std::nullopt;
   if (request.command == "forecast") return counting;
-  // Brackets and audits keep a basis of vectors and a second factor beside the first.
-  if (request.command == "bracket" || request.command == "audit")
-    return keeping + (keeping - counting) + keeping / 4;
-  if (locates(request)) return std::max(keeping, bytes("peak_bytes_locate")) + keeping / 8;
+  switch (memory_kind(request)) {
+    case MemoryKind::kBracket:  // a basis of vectors and a second factor beside the first
+      return keeping + (keeping - counting) + keeping / 4;
+    case MemoryKind::kLocate:
+      return std::max(keeping, bytes("peak_bytes_locate")) + keeping / 8;
+    case MemoryKind::kCount:
+      break;
+  }
   return keeping + keeping / 8;
 }
 

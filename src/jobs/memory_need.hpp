@@ -21,6 +21,10 @@ Offset need_from_size(Offset bytes);
 /// Whether directions are located, which takes vectors beside the factor.
 bool locates(const JobRequest& request);
 
+/// What of a forecast a request needs: requests of one model and one kind share a forecast.
+enum class MemoryKind { kCount, kLocate, kBracket };
+MemoryKind memory_kind(const JobRequest& request);
+
 /// The request that asks for the forecast of `request`: the same model, no question.
 JobRequest forecast_request(const JobRequest& request, const RequestRules& rules);
 
