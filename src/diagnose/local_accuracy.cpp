@@ -11,12 +11,12 @@
 #include "base/ranges.hpp"
 #include "diagnose/held_motions.hpp"
 #include "diagnose/shares.hpp"
+#include "numeric/block_columns.hpp"
 
 namespace stanchion {
 namespace {
 
 constexpr Index kVectors = 32;
-constexpr Offset kRowsAPiece = 4096;  ///< of a block, for one thread
 
 struct PartsJudged {
   std::vector<char> judged;                       ///< by part
@@ -53,7 +53,7 @@ std::vector<double> estimate(Evidence& e, const std::vector<char>& judged, const
   std::vector<double> sum(static_cast<std::size_t>(e.s.rows), 0.0);
   Columns w(e.s.rows, kBlockVectors);
   const auto for_rows = [&](const auto& work) {
-    for_ranges(e.pool, e.s.rows, kRowsAPiece, [&](Offset begin, Offset end) {
+    for_ranges(e.pool, e.s.rows, kBlockRowsAPiece, [&](Offset begin, Offset end) {
       for (auto i = static_cast<Index>(begin); i < end; ++i) work(i, w.row(i));
     });
   };

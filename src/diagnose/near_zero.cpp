@@ -7,12 +7,12 @@
 
 #include "base/counter_random.hpp"
 #include "base/ranges.hpp"
+#include "numeric/block_columns.hpp"
 
 namespace stanchion {
 namespace {
 
 constexpr int kMostRounds = 8;
-constexpr Offset kRowsAPiece = 4096;  ///< of a block, for one thread
 /// A residual that rounding alone explains, and the relative accuracy asked of a value above that.
 constexpr double kRoundingResidual = 3e-15, kRelativeResidual = 1e-4;
 constexpr double kRoughResidual = 0.1;  ///< of the first pair behind the gap
@@ -23,7 +23,7 @@ Columns filled_up(Columns start, Index rows, Index count, std::uint64_t seed, Th
   Columns x(rows, count);
   const CounterRandom random(seed, 0x6c6f63617465ULL + static_cast<std::uint64_t>(start.count));
   const Index fresh = count - start.count;  // a multiple of eight
-  for_ranges(pool, rows, kRowsAPiece, [&](Offset begin, Offset end) {
+  for_ranges(pool, rows, kBlockRowsAPiece, [&](Offset begin, Offset end) {
     for (auto i = static_cast<Index>(begin); i < end; ++i) {
       double* row = x.row(i);
       if (start.count > 0) std::copy_n(start.row(i), start.count, row);

@@ -5,13 +5,13 @@
 
 #include "base/ranges.hpp"
 #include "diagnose/rigid_motion.hpp"
+#include "numeric/block_columns.hpp"
 
 namespace stanchion {
 namespace {
 
-constexpr double kPush = -1e-10;      ///< force over k_ii from which a push counts
-constexpr double kIsolated = 1e-6;    ///< what neighbours may feel of it
-constexpr Offset kRowsAPiece = 4096;  ///< for one thread
+constexpr double kPush = -1e-10;    ///< force over k_ii from which a push counts
+constexpr double kIsolated = 1e-6;  ///< what neighbours may feel of it
 constexpr std::size_t kMostCandidates = 32;
 constexpr double kSwamps = 1e3;  ///< times the median diagonal: stiff enough to be a penalty
 
@@ -55,7 +55,7 @@ RigidProbe probe_rigid_motions(const Structure& s, const ShiftedMatrix& matrix, 
   probe.turns = s.placed;
   probe.motion = Columns(s.rows, kBlockVectors);
   const std::vector<PartPlace> places = places_of_parts(s);
-  for_ranges(pool, s.rows, kRowsAPiece, [&](Offset begin, Offset end) {
+  for_ranges(pool, s.rows, kBlockRowsAPiece, [&](Offset begin, Offset end) {
     for (auto row = static_cast<Index>(begin); row < end; ++row) {
       const auto node = static_cast<std::size_t>(s.node_of[static_cast<std::size_t>(row)]);
       const PartPlace& part = places[static_cast<std::size_t>(s.part_of[node])];

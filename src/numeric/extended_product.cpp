@@ -6,13 +6,13 @@
 #include <vector>
 
 #include "base/ranges.hpp"
+#include "numeric/block_columns.hpp"
 
 namespace stanchion {
 namespace {
 
 constexpr Index kV = kBlockVectors;
-constexpr Index kRanges = 2;          ///< column ranges, each with sums of its own
-constexpr Offset kRowsAPiece = 4096;  ///< of a block, for one thread
+constexpr Index kRanges = 2;  ///< column ranges, each with sums of its own
 
 /// Column ranges with about the same number of entries; the same whatever the number of threads.
 std::array<Index, kRanges + 1> equal_ranges(const MatrixFamily& family) {
@@ -51,7 +51,7 @@ void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, Thr
     high[r] = scaled + size * static_cast<Offset>(1 + 2 * r);
     low[r] = high[r] + size;
   }
-  for_ranges(pool, family.rows, kRowsAPiece, [&](Offset begin, Offset end) {
+  for_ranges(pool, family.rows, kBlockRowsAPiece, [&](Offset begin, Offset end) {
     for (Offset k = begin * kV; k < end * kV; ++k) scaled[k] = y[k] * scales[k / kV];
   });
   std::vector<const double*> members;
@@ -64,7 +64,7 @@ void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, Thr
     std::fill_n(high[r], 2 * size, 0.0);
     block_kernels().extended_product(data, ends[r], ends[r + 1], scaled, high[r], low[r]);
   });
-  for_ranges(pool, family.rows, kRowsAPiece, [&](Offset begin, Offset end) {
+  for_ranges(pool, family.rows, kBlockRowsAPiece, [&](Offset begin, Offset end) {
     for (Offset k = begin * kV; k < end * kV; ++k) {
       const double scale = scales[k / kV];
       Joined sum{high[0][k] * scale, low[0][k] * scale};
