@@ -6,6 +6,7 @@
 #include "base/fault_words.hpp"
 #include "engine/other_side.hpp"
 #include "engine/side_by_side.hpp"
+#include "model/shift_grid.hpp"
 
 namespace stanchion {
 namespace {
@@ -15,18 +16,6 @@ constexpr int kMostRounds = 64;
 /// precision.
 constexpr double kNarrowest = 0x1p-44;
 
-std::vector<double> grid(const SweepRequest& sweep) {
-  std::vector<double> shifts{sweep.from};
-  const double steps = sweep.points - 1;
-  for (Index k = 1; k + 1 < sweep.points; ++k) {
-    const double part = k / steps;
-    shifts.push_back(sweep.geometric ? sweep.from * std::pow(sweep.to / sweep.from, part)
-                                     : sweep.from + (sweep.to - sweep.from) * part);
-  }
-  shifts.push_back(sweep.to);
-  return shifts;
-}
-
 class Sweep {
  public:
   Sweep(PencilCounter& counter, CountRunner& runner, const Request& request, Outcome& outcome)
@@ -34,7 +23,7 @@ class Sweep {
 
   Status run() {
     const double floor = kNarrowest * (sweep_.to - sweep_.from);
-    std::vector<double> shifts = grid(sweep_);
+    std::vector<double> shifts = shift_grid(sweep_);
     for (int round = 0; !shifts.empty() && round < kMostRounds; ++round) {
       auto counts = runner_.run(shifts);
       if (!counts.ok()) return counts.status();
@@ -68,7 +57,7 @@ class Sweep {
     for (const Jump& jump : changes()) {
       const double span = jump.high - jump.low, size = std::max(std::fabs(jump.low), std::fabs(jump.high));
       if (std::abs(jump.count) > 1 && span > sweep_.width * size && span > floor)
-        middles.push_back(jump.low + span / 2);
+        middles.push_back(middle_shift(jump.low, jump.high));
     }
     return middles;
   }

@@ -3,6 +3,8 @@
 #include <algorithm>
 #include <cmath>
 
+#include "model/shift_grid.hpp"
+
 namespace stanchion {
 namespace {
 
@@ -109,7 +111,7 @@ std::vector<double> Staircase::splits(double width, double floor) const {
     const double high = here.band ? std::min(here.shift, here.band->first) : here.shift;
     const double size = std::max(std::fabs(low), std::fabs(high));
     if (!(high - low > width * size) || !(high - low > floor)) continue;
-    const double middle = low + (high - low) / 2;
+    const double middle = middle_shift(low, high);
     if (middle > low && middle < high) middles.push_back(middle);
   }
   return middles;

@@ -58,6 +58,26 @@ class SweepTest(ProgramTest):
         self.assertAlmostEqual(document["counts"][1]["shift"], 0.1)
         self.expect_failure(2, "contradiction", "sweep", self.stiffness, "--from", -1, "--to", 1, "--spacing", "geometric")
 
+    def test_shifts_are_the_numbers_a_person_would_type_wherever_they_stand(self):
+        # 1 + 0.9 * 0.75 is 1.6749999999999998 in double precision.
+        typed = ["1.1125", "1.225", "1.3375", "1.45", "1.5625", "1.675", "1.7875"]
+        arguments = ("--from", 1, "--to", 1.9, "--points", 9, "--results", "r.jsonl", "--csv", "r.csv")
+        document = self.sweep(0, *arguments)
+        self.assertEqual([repr(count["shift"]) for count in document["counts"]][1:-1], typed)
+        journal = (self.folder / "r.jsonl").read_text(encoding="utf-8")
+        table = (self.folder / "r.csv").read_text(encoding="utf-8")
+        text = self.run_program("sweep", self.stiffness, *arguments[:-2]).stdout
+        for value in typed:
+            self.assertIn(f'"shift":{value},', journal.replace(" ", ""))
+            self.assertIn(value + ",", table)
+            self.assertRegex(text, rf"\b{re.escape(value)}\b")
+        self.assertEqual(self.sweep(0, *arguments)["resumed"], 9)
+        # Kept by a version that wrote the raw sum: that point is counted again, the others are taken over.
+        (self.folder / "r.jsonl").write_text(journal.replace("1.675", "1.6749999999999998"), encoding="utf-8")
+        again = self.sweep(0, *arguments)
+        self.assertEqual(again["resumed"], 8)
+        self.assertEqual(again["counts"], document["counts"])
+
     def test_the_picture_is_a_picture(self):
         self.sweep(0, "--geometric", self.geometric, "--from", 0.5, "--to", 1.0, "--points", 4, "--svg", "steps.svg")
         root = xml.etree.ElementTree.parse(self.folder / "steps.svg").getroot()
