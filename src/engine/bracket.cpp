@@ -233,13 +233,14 @@ class Bracketer {
 
   /// K is not definite (said already): the inertia at the ends is all there is.
   Status say_what_is_known(const ValueRange& range) {
+    answer_.sentences = counter_.reservations();
     for (const auto& end : {range.low, range.high}) {
       if (!end || *end == 0) continue;
       auto count = counter_.count(*end);
       if (!count.ok()) return count.status();
       if (!count->below) continue;
-      answer_.sentences.push_back("At " + number_text(*end) + " there are " + std::to_string(*count->below) +
-                                  " " + count->meaning + "; no number of values follows from that.");
+      answer_.sentences.push_back("Number of " + count->meaning + " " + number_text(*end) + ": " +
+                                  std::to_string(*count->below) + "; no number of values follows from that.");
     }
     return {};
   }

@@ -25,6 +25,7 @@ Result<Outcome> count_model(ModelInput model, const Request& request, const RunC
   PencilCounter counter(request, context, pool, outcome);
   if (Status status = counter.prepare(std::move(model)); !status.ok()) return status;
   if (Status status = counter.judge(); !status.ok()) return status;
+  outcome.count->sentences = counter.reservations();
   for (const double shift : request.shifts) {
     auto count = counter.count(shift);
     if (!count.ok()) return count.status();

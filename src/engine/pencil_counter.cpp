@@ -147,6 +147,8 @@ Status PencilCounter::prepare(ModelInput model) {
 }
 
 Status PencilCounter::judge() {
+  if (judged_) return {};
+  judged_ = true;
   if (request_.pencil == Pencil::kStiffness) {
     kind_ = CountKind::kBelow;
     return {};
@@ -202,10 +204,11 @@ Status PencilCounter::judge_massless(const ModelInput& model, const std::vector<
   if (found->certificate.level == Level::kNone || found->inertia.zero > 0) {
     mass_semidefinite_ = false;
     massless_singular_ = true;
-    warn("massless-and-weightless",
-         "K is singular (at the resolution) on the dofs without mass: K and M may have common null vectors, "
-         "and "
-         "then no count of eigenvalues exists; the inertia of K - s M is reported instead");
+    const std::string reservation =
+        "K is singular (at the resolution) on the dofs without mass: K and M may have common null vectors, "
+        "and then no count of eigenvalues exists; the inertia of K - s M is reported instead";
+    reservations_.push_back(reservation + ".");
+    warn("massless-and-weightless", reservation);
     return {};
   }
   base_ = base_.level == Level::kNone ? found->certificate : weaker(base_, found->certificate);
@@ -260,18 +263,20 @@ Status PencilCounter::judge_stiffness() {
     auto found = look_for_origin();
     if (!found.ok()) return found.status();
     if (*found) return {};
-    warn("mass-not-definite",
-         "M could not be certified positive definite, so the numbers are negative directions of K - s M, not "
-         "counts of "
-         "eigenvalues below s");
+    const std::string reservation =
+        "M could not be certified positive definite, so the numbers are negative directions of K - s M, not "
+        "counts of eigenvalues below s";
+    reservations_.push_back(reservation + ".");
+    warn("mass-not-definite", reservation);
     return {};
   }
-  warn("stiffness-not-definite", "K itself is not positive definite (" +
-                                     std::to_string(definite->inertia.negative) + " negative, " +
-                                     std::to_string(definite->inertia.zero) +
-                                     " zero directions), so no count of critical factors follows; the "
-                                     "inertia of K + f G is reported instead. "
-                                     "Remedy: run `stanchion check` on K first");
+  const std::string reservation = "K itself is not positive definite (" +
+                                  std::to_string(definite->inertia.negative) + " negative, " +
+                                  std::to_string(definite->inertia.zero) +
+                                  " zero directions), so no count of critical factors follows; the inertia "
+                                  "of K + f G is reported instead";
+  reservations_.push_back(reservation + ".");
+  warn("stiffness-not-definite", reservation + ". Remedy: run `stanchion check` on K first");
   return definite->inertia.zero > 0 ? look_for_common_null_vectors() : Status{};
 }
 
@@ -314,11 +319,13 @@ Status PencilCounter::look_for_common_null_vectors() {
     common = std::min(common, found->certificate.level == Level::kNone ? Index{0} : found->inertia.zero);
   }
   if (common == 0) return {};
+  const std::string reservation =
+      std::to_string(common) + (common == 1 ? " direction is" : " directions are") +
+      " zero in K and in G alike (at the resolution): K + f G is singular at every f, so that no critical "
+      "factor is defined";
+  reservations_.push_back(reservation + ".");
   warn("common-null-vectors",
-       std::to_string(common) + (common == 1 ? " direction is" : " directions are") +
-           " zero in K and in G alike (at the resolution): K + f G is singular at every f, so that no "
-           "critical factor is "
-           "defined. Remedy: support the model, or strike these directions out with --fix");
+       reservation + ". Remedy: support the model, or strike these directions out with --fix");
   return {};
 }
 

@@ -4,6 +4,7 @@
 #include <optional>
 #include <string>
 #include <utility>
+#include <vector>
 
 #include "engine/prepared_pencil.hpp"
 #include "spectrum/staircase.hpp"
@@ -30,13 +31,15 @@ class PencilCounter {
 
   /// Settles what counts mean: K certified definite, or M semidefinite, or neither, with a warning; where
   /// neither holds an origin below 0 is looked for (kAbove), below which a count is one of directions. Call
-  /// after prepare(); the safety question calls it only when it has to.
+  /// after prepare(); the safety question calls it only when it has to. Again: nothing more.
   Status judge();
 
   /// Taken as judged: K is definite by `why` (both ends of a line definite, say).
   void accept_definite(const Certificate& why);
 
   CountKind kind() const { return kind_; }
+  /// What keeps counts from being counts of values, to be said before them; none where nothing does.
+  const std::vector<std::string>& reservations() const { return reservations_; }
 
   /// The count at one shift, charged to the document's risk.
   Result<ShiftCount> count(double shift);
@@ -110,6 +113,8 @@ class PencilCounter {
   Outcome& outcome_;
   std::optional<PreparedPencil> pencil_;
   CountKind kind_ = CountKind::kDirections;
+  bool judged_ = false;
+  std::vector<std::string> reservations_;
   bool mass_semidefinite_ = false, mass_diagonal_ = false, massless_singular_ = false, mass_judged_ = false;
   double stiffness_bound_ =
       0;               ///< S K S is at least this, when certified definite; kAbove: S (K - origin M) S

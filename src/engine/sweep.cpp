@@ -101,6 +101,7 @@ Result<Outcome> sweep_model(ModelInput model, const Request& request, const RunC
   PencilCounter counter(request, context, pool, outcome);
   if (Status status = counter.prepare(std::move(model)); !status.ok()) return status;
   if (Status status = counter.judge(); !status.ok()) return status;
+  outcome.count->sentences = counter.reservations();
   CountRunner runner(counter, context, pool, outcome);
   if (Status status = runner.open(); !status.ok()) return status;
   if (Status status = Sweep(counter, runner, request, outcome).run(); !status.ok()) return status;

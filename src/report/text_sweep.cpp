@@ -57,11 +57,22 @@ std::string what(const CountOutcome& answer) {
   return "negative directions";
 }
 
+/// No number at this shift: a range, or nothing.
+bool is_open(const ShiftCount& count) {
+  return !count.below || count.level == Level::kNone;
+}
+
 void write_jumps(Page& page, const Outcome& outcome) {
   const std::vector<Jump>& jumps = outcome.sweep->jumps;
   const std::string who = what(*outcome.count);
   if (jumps.empty()) {
-    if (who != "negative directions") {
+    const std::vector<ShiftCount>& counts = outcome.count->counts;
+    const auto open = std::count_if(counts.begin(), counts.end(), is_open);
+    if (open > 0) {
+      page.sentence(
+          fmt::format("No change of the number of {} is certain: it is known only as a range at {} of {}.",
+                      who, open, counted(static_cast<Offset>(counts.size()), "shift")));
+    } else if (who != "negative directions") {
       page.sentence(fmt::format("The count does not change: no {} in the range of the sweep.", who));
     } else {
       page.sentence(
@@ -92,16 +103,16 @@ void write_sweep(Page& page, const Outcome& outcome) {
         fmt::format("DEFECT: the counts at {} and {} contradict each other; nothing here is to be trusted.",
                     exact(pair.shift), exact(pair.other_shift)));
   }
-  const bool all = std::all_of(answer.counts.begin(), answer.counts.end(), [](const ShiftCount& count) {
-    return count.below.has_value() && count.level != Level::kNone;
-  });
+  const bool all = std::none_of(answer.counts.begin(), answer.counts.end(), is_open);
   std::string who = what(answer);
   who[0] = static_cast<char>(who[0] - 'a' + 'A');
   page.sentence(fmt::format("{} counted at {}, {}.", who,
                             counted(static_cast<Offset>(answer.counts.size()), "shift"),
                             all ? "every count certified" : "not every count certified"));
-  write_jumps(page, outcome);
+  const bool values = what(answer) != "negative directions";
+  if (values) write_jumps(page, outcome);
   for (const std::string& sentence : answer.sentences) page.sentence(sentence);
+  if (!values) write_jumps(page, outcome);  // what the numbers are not is said before them
   write_picture(page, known_points(answer.counts));
   write_counts_table(page, answer, outcome.rows_analysed);
   if (outcome.sweep->resumed > 0) {

@@ -218,6 +218,19 @@ class SweepTest(ProgramTest):
         document = self.expect(0, "sweep", path, "--geometric", geometric, "--from", 0.45, "--to", 0.9, "--points", 3)
         self.assertEqual(([count["below"] for count in document["counts"]], document["jumps"]), ([1, 1, 1], []))
         self.assertIn("The number of negative directions is the same at every shift", " ".join(document["in_words"]))
+        self.assertIn("K itself is not positive definite (1 negative, 0 zero directions)", document["in_words"][1])
+
+    def test_ranges_are_not_called_the_same_number(self):
+        # Zero in K and G alike: nowhere one number of negative directions, though they grow from 0 to 2.
+        path = self.matrix("S.mtx", 3, diagonal([0, 2, 3]))
+        geometric = self.matrix("B.mtx", 3, diagonal([0, -1, -1]))
+        document = self.expect(3, "sweep", path, "--geometric", geometric, "--from", 0.5, "--to", 3.1, "--points", 3)
+        self.assertEqual([count["below_range"] for count in document["counts"]], [[0, 1], [0, 1], [2, 3]])
+        words = " ".join(document["in_words"])
+        self.assertIn("No change of the number of negative directions is certain: it is known only as a range at "
+                      "3 of 3 shifts", words)
+        self.assertNotIn("is the same", words)
+        self.assertIn("singular at every f", document["in_words"][2])
 
     def test_bad_questions(self):
         for arguments, code in ((("--from", 1), "missing-argument"), (("--from", 2, "--to", 1), "out-of-range"),
