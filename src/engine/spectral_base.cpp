@@ -76,10 +76,13 @@ class BaseSettler {
   /// kAbove any tau will do: K - s M is definite at -tau and at the origin, so between them (convexity), and
   /// no value lies there.
   Status settle_elastic() {
-    auto zero = count_at_(0);
-    if (!zero.ok()) return zero.status();
-    if (*zero) rigid_ = base_->rigid = static_cast<Index>((*zero)->most - (*zero)->least);
-    const Offset below = *zero ? (*zero)->least : 0;
+    if (!at_zero_) {
+      auto zero = count_at_(0);
+      if (!zero.ok()) return zero.status();
+      at_zero_ = *zero;
+    }
+    if (at_zero_) rigid_ = base_->rigid = static_cast<Index>(at_zero_->most - at_zero_->least);
+    const Offset below = at_zero_ ? at_zero_->least : 0;
     return move_near_elastic(static_cast<std::size_t>(below + rigid_));
   }
 
@@ -106,13 +109,23 @@ class BaseSettler {
     return {};
   }
 
+  /// K is not definite, and how many values lie below 0 and at it has been found with that.
+  void remember_zero(const CertifiedInertia& found) {
+    const auto warnings = outcome_.warnings.size();
+    at_zero_ = counter_.fact(counter_.count_of(0, found));
+    outcome_.warnings.resize(warnings);
+  }
+
   Result<bool> try_tau(double tau) {
     double bound = 0;
     if (small()) {
       auto found = counter_.inertia_at(-tau, true);
       if (!found.ok()) return found.status();
       bound = found->certificate.smallest_eigenvalue_above.value_or(0);
-      if (!(bound > 0)) return false;
+      if (!(bound > 0)) {
+        if (tau == 0) remember_zero(*found);
+        return false;
+      }
     }
     auto base = counter_.pencil().definite_base(counter_.factor_of(-tau), bound, pool_, outcome_);
     if (!base.ok()) return base.status();
@@ -128,6 +141,7 @@ class BaseSettler {
   ThreadPool& pool_;
   Outcome& outcome_;
   std::optional<SpectralBase> base_;
+  std::optional<CountFact> at_zero_;
   Index rigid_ = 0;
 };
 

@@ -19,6 +19,7 @@ std::string noun_of(const Outcome& outcome) {
 }
 
 std::string end_of(double value, bool hertz) {
+  if (hertz && value < 0) return "s = " + exact(value);  // no frequency
   if (hertz) return fmt::format("{:.8g} Hz", hertz_of(value));
   return exact(value);
 }

@@ -186,6 +186,9 @@ class BracketTest(ProgramTest):
                 self.assertFalse(critical["rigid_body"])
                 self.assertTrue(critical["low"] <= value * (1 + 1e-12) and value * (1 - 1e-12) <= critical["high"])
                 self.assertAlmostEqual(critical["hertz"]["value"], math.sqrt(value) / (2 * math.pi), places=9)
+            self.assertNotRegex(document["in_words"][0], r"-\d[^ ]* Hz")  # below 0 there is no frequency
+            if method == "residual":  # what was found at 0 while looking for a definite base is not counted again
+                self.assertLessEqual(document["work"]["factorizations"], 12)
 
     def test_frequencies_with_massless_dofs(self):
         # K = [2 -1 0; -1 2 -1; 0 -1 1], M = diag(1, 0, 4), condensed by hand: s = (1.625 -+ sqrt(1.625^2 - 0.5)) / 2
