@@ -29,6 +29,7 @@ class LoadPath {
       if (!judged.ok()) return judged;
     }
     judged->inputs = std::move(inputs_);
+    judged->tables = std::move(tables_);
     judged->path = std::move(path_);
     judged->check = std::move(deciding_);
     if (shared_.reused < static_cast<Index>(request_.steps.size())) {
@@ -46,6 +47,7 @@ class LoadPath {
     one.steps.clear();
     one.input.stiffness = path;
     outcome.inputs.clear();
+    outcome.tables.clear();
     outcome.rows_struck = 0;
     auto model = read_model(one, context_, pool_, outcome);
     if (!model.ok()) return model.status();
@@ -61,7 +63,10 @@ class LoadPath {
 
   Result<Outcome> step(ModelInput model, Outcome outcome) {
     const InputRecord input = outcome.inputs.front();
-    if (inputs_.empty()) inputs_ = outcome.inputs;
+    if (inputs_.empty()) {
+      inputs_ = outcome.inputs;
+      tables_ = outcome.tables;  // every step reads the same ones
+    }
     auto judged = check_model(std::move(model), request_, context_, pool_, std::move(outcome), &shared_);
     if (!judged.ok()) return judged;
     const CheckOutcome& check = *judged->check;
@@ -87,6 +92,7 @@ class LoadPath {
   PathOutcome path_;
   CheckOutcome deciding_;
   std::vector<InputRecord> inputs_;
+  std::vector<TableRecord> tables_;
   InputRecord first_input_;
   Index rows_ = 0;
 };

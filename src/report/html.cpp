@@ -189,10 +189,16 @@ std::string inputs_to_html(const Outcome& outcome) {
         escaped(input.role), input.factor ? ", times " + exact(*input.factor) : "", path_to_html(input.path),
         grouped(input.rows), grouped(input.entries), escaped(input.sha256));
   }
-  for (const TableRecord& table : outcome.tables) {
+  const auto file = [&](const std::string& role, const std::string& path, const std::string& sha256) {
     html += fmt::format("<tr><td>{}</td><td>{}</td><td></td><td></td><td class=\"digest\">{}</td></tr>\n",
-                        escaped(table.role), path_to_html(table.path), escaped(table.sha256));
+                        escaped(role), path_to_html(path), escaped(sha256));
+  };
+  // The first step of a load path is the stiffness above.
+  for (std::size_t k = 1; outcome.path && k < outcome.path->steps.size(); ++k) {
+    const PathStep& step = outcome.path->steps[k];
+    file("step " + std::to_string(k + 1), step.path, step.sha256);
   }
+  for (const TableRecord& table : outcome.tables) file(table.role, table.path, table.sha256);
   html += "</table>\n";
   Page page;
   write_provenance(page, outcome);

@@ -21,8 +21,12 @@ std::string tag(const char* name, const std::string& text) {
   return fmt::format("<{0}>{1}</{0}>", name, flowing(text));
 }
 
+/// A table of more columns than this is set closer, so that it fits beside the heading of its section.
+constexpr std::size_t kEasyColumns = 7;
+
 std::string table_of(const Page::Block& block) {
-  std::string html = "<table>\n";
+  const bool many = !block.cells.empty() && block.cells[0].size() > kEasyColumns;
+  std::string html = many ? "<table class=\"close\">\n" : "<table>\n";
   for (std::size_t r = 0; r < block.cells.size(); ++r) {
     html += "<tr>";
     for (std::size_t c = 0; c < block.cells[r].size(); ++c) {
@@ -151,14 +155,16 @@ std::string cause_to_html(const LocateOutcome& located, const Direction& directi
   return html;
 }
 
-/// Bars by half digits, with the two levels.
-/// As wide as a bar at most; the exact number is in the bar's title.
+/// Two digits or three, so that it is hardly wider than a bar, whose title has the exact number.
 std::string short_count(Index count) {
-  if (count < 10'000) return std::to_string(count);
-  if (count < 1'000'000) return fmt::format("{:.0f}k", count / 1e3);
-  return fmt::format("{:.2g}M", count / 1e6);
+  if (count < 1000) return std::to_string(count);
+  if (count < 9'950) return fmt::format("{:.1f}k", count / 1e3);
+  if (count < 999'500) return fmt::format("{:.0f}k", count / 1e3);
+  if (count < 9'950'000) return fmt::format("{:.1f}M", count / 1e6);
+  return fmt::format("{:.0f}M", count / 1e6);
 }
 
+/// Bars by half digits, with the two levels.
 std::string histogram(const LocalAccuracy& accuracy) {
   constexpr double kWidth = 640, kHeight = 210, kLeft = 20, kBase = 172, kTop = 26;
   const double digits = std::max({accuracy.alarm + 1.0, accuracy.largest + 0.5, 4.0});
@@ -196,7 +202,7 @@ std::string histogram(const LocalAccuracy& accuracy) {
   level(accuracy.alarm, "alarm");
   svg += fmt::format(
       "<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">decimal digits lost, of "
-      "16</text>\n",
+      "16; above each bar its equations (k: thousand, M: million)</text>\n",
       kWidth / 2, kBase + 32);
   return svg + "</svg>\n";
 }

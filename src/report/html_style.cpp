@@ -44,6 +44,7 @@ table { border-collapse: collapse; width: 100%; margin: .2rem 0; }
 th, td:first-child { overflow-wrap: normal; white-space: nowrap; }
 th { text-align: left; font-weight: 600; color: var(--soft); border-bottom: 1px solid var(--line); }
 td, th { padding: .22rem .9rem .22rem 0; vertical-align: top; } .right { text-align: right; white-space: nowrap; overflow-wrap: normal; }
+table.close { font-size: .84rem; } table.close td, table.close th { padding-right: .55rem; }
 table.inputs td:nth-child(2) { min-width: 8rem; } sub, sup { line-height: 0; } section.band p { margin: .2rem 0 .7rem; }
 td.bar { width: 34%; } td.bar i { display: block; height: .62rem; margin-top: .42rem; background: var(--blue); border-radius: 0 3px 3px 0; min-width: 2px; }
 code, .digest { font-family: ui-monospace, "DejaVu Sans Mono", Menlo, Consolas, monospace; font-size: .84rem; }
@@ -78,6 +79,7 @@ text.v-number { font-size: 11.5px; paint-order: stroke; stroke: var(--tint); str
 .c-axis { stroke: var(--soft); fill: none; } .c-level { stroke: var(--ring); fill: none; stroke-dasharray: 4 3; } .c-step { stroke: var(--blue); fill: none; stroke-width: 2.2; }
 svg text.c-small { font-size: 11px; fill: var(--soft); }
 footer { border-top: 3px double var(--line); margin-top: .8rem; padding-top: .7rem; color: var(--soft); font-size: .87rem; }
+@media screen and (max-width: 60rem) { table.close { display: block; overflow-x: auto; } }
 @media screen and (max-width: 52rem) {
   main { padding: 1.2rem 1.1rem 2rem; }
   section.band { grid-template-columns: minmax(0, 1fr); } section.band > h2 { margin-bottom: .5rem; }

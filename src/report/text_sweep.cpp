@@ -84,7 +84,7 @@ void write_jumps(Page& page, const Outcome& outcome) {
   Index sum = 0;
   for (const Jump& jump : jumps) sum += jump.count;
   page.sentence(fmt::format(
-      "{} {} in {}:", grouped(sum), who,
+      "{} {} in {}.", grouped(sum), who,
       jumps.size() == 1 ? std::string("one stretch") : fmt::format("{} stretches", jumps.size())));
   page.blank();
   std::vector<std::vector<std::string>> rows{{"from", "to", "width", who}};

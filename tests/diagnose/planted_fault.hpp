@@ -1,4 +1,5 @@
-// A specimen with one fault of its own, and what must come out for it: kind, count, and every node that moves.
+// A specimen with one fault of its own, and what must come out for it: kind, count, and every node that
+// moves.
 #pragma once
 
 #include <algorithm>
@@ -63,8 +64,7 @@ inline std::vector<std::int64_t> connected_to_copies(const Specimen& cut, std::s
   const auto node_of = [&](Index row) { return cut.dofs[static_cast<std::size_t>(row)].node; };
   for (Index j = 0; j < k.rows; ++j) {
     for (Offset e = k.column_start[j]; e < k.column_start[Offset{j} + 1]; ++e) {
-      if (k.value[e] != 0)
-        root[static_cast<std::size_t>(find(node_of(k.row[e])))] = find(node_of(j));
+      if (k.value[e] != 0) root[static_cast<std::size_t>(find(node_of(k.row[e])))] = find(node_of(j));
     }
   }
   const Index loose = find(static_cast<Index>(sound_nodes) + 1);

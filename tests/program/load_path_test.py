@@ -1,5 +1,7 @@
 """stanchion check on a sequence of matrices: where the inertia changes along a load path."""
 
+import hashlib
+import pathlib
 import unittest
 
 from program import ProgramTest, chain, chain_eigenvalues
@@ -27,6 +29,18 @@ class LoadPathTest(ProgramTest):
         self.assertEqual([step["changed"] for step in document["steps"]], [False, False, True, False, True, True])
         self.assertEqual(document["verdict"], "indefinite")
         self.assertTrue(any("between two of the matrices" in text for text in document["not_checked"]))
+
+    def test_every_file_is_named_once_with_its_digest(self):
+        paths = self.steps([0, VALUES[0] / 2, VALUES[0] * 1.5])
+        dofs = self.folder / "dofs.csv"
+        dofs.write_text("equation,node,dof\n" + "".join(f"{k + 1},{k + 1},ux\n" for k in range(ROWS)), encoding="ascii")
+        page = self.folder / "path.html"
+        document = self.expect(1, "check", *paths, "--dofs", str(dofs), "--html", str(page))
+        self.assertEqual([table["role"] for table in document["tables"]], ["dofs"])
+        text = page.read_text(encoding="utf-8")
+        for path in [*paths, dofs]:
+            digest = hashlib.sha256(pathlib.Path(path).read_bytes()).hexdigest()
+            self.assertEqual(text.count(digest), 1, path)
 
     def test_all_definite(self):
         document = self.expect(0, "check", *self.steps([0, 0.001, 0.002]))
