@@ -81,41 +81,81 @@ void add_location(Table& table, const LocateOutcome& located) {
     table.row("accuracy", "worst", name_of_dof(worst), worst.share);
 }
 
+void add_counts(Table& table, const CountOutcome& answer) {
+  for (const ShiftCount& count : answer.counts) {
+    const std::string item = exact(count.shift);
+    if (count.below) table.row("counts", item, "below", *count.below);
+    table.row("counts", item, "least", count.below_range.first);
+    table.row("counts", item, "most", count.below_range.second);
+    table.row("counts", item, "level", name_of(count.level));
+  }
+}
+
+void add_jumps(Table& table, const SweepOutcome& sweep) {
+  for (std::size_t k = 0; k < sweep.jumps.size(); ++k) {
+    const std::string item = std::to_string(k + 1);
+    table.row("jumps", item, "low", sweep.jumps[k].low);
+    table.row("jumps", item, "high", sweep.jumps[k].high);
+    table.row("jumps", item, "count", sweep.jumps[k].count);
+  }
+}
+
+/// Values in their intervals: "critical" of a bracket, "missing" of an audit.
+void add_values(Table& table, const std::string& name, const std::vector<CriticalValue>& values) {
+  for (std::size_t k = 0; k < values.size(); ++k) {
+    const CriticalValue& value = values[k];
+    const std::string item = std::to_string(k + 1);
+    table.row(name, item, "value", value.value);
+    table.row(name, item, "low", value.low);
+    table.row(name, item, "high", value.high);
+    table.row(name, item, "multiplicity", value.multiplicity);
+    table.row(name, item, "level", name_of(value.level));
+  }
+}
+
+void add_audit(Table& table, const AuditOutcome& audit) {
+  table.row("audit", "list", "verdict", name_of(audit.verdict));
+  table.row("audit", "list", "from", audit.range.from);
+  table.row("audit", "list", "to", audit.range.to);
+  table.row("audit", "list", "listed", audit.listed);
+  if (audit.range.count) table.row("audit", "list", "counted", *audit.range.count);
+  table.row("audit", "list", "outside", audit.outside);
+  table.row("audit", "list", "level", name_of(audit.range.level));
+  for (std::size_t k = 0; k < audit.gaps.size(); ++k) {
+    const AuditGap& gap = audit.gaps[k];
+    const std::string item = std::to_string(k + 1);
+    table.row("gaps", item, "low", gap.low);
+    table.row("gaps", item, "high", gap.high);
+    table.row("gaps", item, "listed", gap.listed);
+    table.row("gaps", item, "counted", gap.counted);
+  }
+  add_values(table, "missing", audit.missing);
+}
+
+void add_path(Table& table, const PathOutcome& path) {
+  for (std::size_t k = 0; k < path.steps.size(); ++k) {
+    const PathStep& step = path.steps[k];
+    const std::string item = std::to_string(k + 1);
+    table.row("steps", item, "path", step.path);
+    table.row("steps", item, "verdict", name_of(step.verdict));
+    table.row("steps", item, "negative", step.inertia.negative);
+    table.row("steps", item, "zero", step.inertia.zero);
+    table.row("steps", item, "positive", step.inertia.positive);
+    table.row("steps", item, "undecided", step.inertia.undecided);
+    table.row("steps", item, "level", name_of(step.certificate.level));
+  }
+}
+
 }  // namespace
 
 std::string to_csv(const Outcome& outcome) {
   Table table;
   if (outcome.check) add_check(table, *outcome.check);
-  if (outcome.count) {
-    for (const ShiftCount& count : outcome.count->counts) {
-      const std::string item = exact(count.shift);
-      if (count.below) table.row("counts", item, "below", *count.below);
-      table.row("counts", item, "least", count.below_range.first);
-      table.row("counts", item, "most", count.below_range.second);
-      table.row("counts", item, "level", name_of(count.level));
-    }
-  }
-  if (outcome.bracket) {
-    for (std::size_t k = 0; k < outcome.bracket->critical.size(); ++k) {
-      const CriticalValue& value = outcome.bracket->critical[k];
-      const std::string item = std::to_string(k + 1);
-      table.row("critical", item, "value", value.value);
-      table.row("critical", item, "low", value.low);
-      table.row("critical", item, "high", value.high);
-      table.row("critical", item, "multiplicity", value.multiplicity);
-      table.row("critical", item, "level", name_of(value.level));
-    }
-  }
-  if (outcome.audit) {
-    for (std::size_t k = 0; k < outcome.audit->gaps.size(); ++k) {
-      const AuditGap& gap = outcome.audit->gaps[k];
-      const std::string item = std::to_string(k + 1);
-      table.row("gaps", item, "low", gap.low);
-      table.row("gaps", item, "high", gap.high);
-      table.row("gaps", item, "listed", gap.listed);
-      table.row("gaps", item, "counted", gap.counted);
-    }
-  }
+  if (outcome.path) add_path(table, *outcome.path);
+  if (outcome.count) add_counts(table, *outcome.count);
+  if (outcome.sweep) add_jumps(table, *outcome.sweep);
+  if (outcome.bracket) add_values(table, "critical", outcome.bracket->critical);
+  if (outcome.audit) add_audit(table, *outcome.audit);
   if (outcome.forecast) {
     table.row("forecast", "factor", "seconds", outcome.forecast->seconds);
     table.row("forecast", "factor", "flops", outcome.forecast->factor_flops);

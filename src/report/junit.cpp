@@ -4,6 +4,7 @@
 
 #include <vector>
 
+#include "model/names.hpp"
 #include "report/cause_words.hpp"
 #include "report/markup.hpp"
 #include "report/numbers.hpp"
@@ -19,6 +20,20 @@ struct Case {
   std::string name, message;
   State state = State::kPassed;
 };
+
+/// A case for every matrix of a load path; where the whole answer is what was expected, all of them are.
+void add_steps(std::vector<Case>& cases, const PathOutcome& path, bool good) {
+  for (std::size_t k = 0; k < path.steps.size(); ++k) {
+    const PathStep& step = path.steps[k];
+    const bool known = step.verdict != Verdict::kUnresolved;
+    cases.push_back({fmt::format("step {}, {}", k + 1, step.path),
+                     fmt::format("{}: {} negative, {} zero, {} undecided", name_of(step.verdict),
+                                 step.inertia.negative, step.inertia.zero, step.inertia.undecided),
+                     !known                                               ? State::kError
+                     : good || step.verdict == Verdict::kPositiveDefinite ? State::kPassed
+                                                                          : State::kFailed});
+  }
+}
 
 std::vector<Case> cases_of(const Outcome& outcome, bool good, bool unresolved) {
   Page page;
@@ -36,6 +51,13 @@ std::vector<Case> cases_of(const Outcome& outcome, bool good, bool unresolved) {
                              : fmt::format("between {} and {} {}", count.below_range.first,
                                            count.below_range.second, count.meaning),
                        known ? State::kPassed : State::kError});
+    }
+  }
+  if (outcome.path) add_steps(cases, *outcome.path, good);
+  if (outcome.audit) {
+    for (const AuditGap& gap : outcome.audit->gaps) {
+      cases.push_back({fmt::format("from {} to {}", exact(gap.low), exact(gap.high)),
+                       fmt::format("{} listed, {} counted", gap.listed, gap.counted), State::kFailed});
     }
   }
   if (outcome.located) {

@@ -61,8 +61,7 @@ class StaircasePicture {
     svg_ = fmt::format(
         "<svg xmlns=\"http://www.w3.org/2000/svg\" viewBox=\"0 0 {0:g} {1:g}\" width=\"{0:g}\" "
         "height=\"{1:g}\" "
-        "role=\"img\" style=\"max-width:100%;height:auto\" font-family=\"sans-serif\" "
-        "font-size=\"13\">\n<title>{2}</title>\n",
+        "role=\"img\" style=\"max-width:100%;height:auto;font:13px sans-serif\">\n<title>{2}</title>\n",
         kWidth, kHeight, escaped("Staircase: " + meaning));
     svg_ += fmt::format("<rect class=\"s-ground\" width=\"{:g}\" height=\"{:g}\" fill=\"#ffffff\"/>\n",
                         kWidth, kHeight);

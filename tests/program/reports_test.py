@@ -19,10 +19,11 @@ class Outline(html.parser.HTMLParser):
 
     def __init__(self):
         super().__init__(convert_charrefs=True)
-        self.open, self.text, self.attributes = [], [], []
+        self.open, self.text, self.attributes, self.tags, self.headings = [], [], [], [], []
 
     def handle_starttag(self, tag, attrs):
         self.attributes += attrs
+        self.tags.append(tag)
         if tag not in VOID:
             self.open.append(tag)
 
@@ -37,6 +38,8 @@ class Outline(html.parser.HTMLParser):
 
     def handle_data(self, data):
         self.text.append(data)
+        if self.open and self.open[-1] == "h2":
+            self.headings.append(data)
 
 
 def outline(path):
@@ -52,6 +55,14 @@ def numpy_single(text):
     return struct.unpack("f", struct.pack("f", float(text)))[0]
 
 
+def push_along(path, pushed):
+    """Writes the matrix with a spring at its equation 301 that pushes along instead of back."""
+    lines = path.read_text(encoding="ascii").splitlines()
+    at = next(k for k, line in enumerate(lines) if line.startswith("301 301 "))
+    lines[at] = f"301 301 {-3 * float(lines[at].split()[2])!r}"
+    pushed.write_text("\n".join(lines) + "\n", encoding="ascii")
+
+
 class ReportsTest(ProgramTest):
     def validate(self, page):
         """By an HTML5 parser that tolerates no error, and by HTML Tidy, where they are there."""
@@ -65,18 +76,26 @@ class ReportsTest(ProgramTest):
                                  capture_output=True, text=True, check=False)
             self.assertEqual((run.returncode, run.stderr.strip()), (0, ""))
 
-    def located(self, name="frame", fault="loose-part", code=1):
+    def located(self, name="frame", fault="loose-part", code=1, pushed=False):
         folder = self.folder / "model"
         run = self.run_program("specimen", name, "--unknowns", 900, "--fault", fault, "--out", folder, "--quiet")
         self.assertEqual(run.returncode, 0, run.stderr)
+        if pushed:
+            push_along(folder / "K.mtx", folder / "K.mtx")
         files = {kind: self.folder / f"answer.{kind}" for kind in ("html", "csv", "xml", "vtu", "view")}
         document = self.expect(code, "locate", folder / "K.mtx", "--dofs", folder / "dofs.csv", "--nodes",
                                folder / "nodes.csv", "--html", files["html"], "--csv", files["csv"], "--junit",
                                files["xml"], "--vtu", files["vtu"], "--view", files["view"], "--title", "Store & yard", "--reference", "sheet <14>")
         return document, files
 
+    def two_causes(self):
+        """A frame with a part that hangs on nothing, and a spring at one node that pushes along."""
+        document, files = self.located(pushed=True)
+        self.assertEqual([direction["kind"] for direction in document["directions"]], ["negative_spring", "loose_part"])
+        return document, files
+
     def test_html(self):
-        document, files = self.located()
+        document, files = self.two_causes()
         self.validate(files["html"])
         page = outline(files["html"])
         text = " ".join(page.text)
@@ -95,11 +114,18 @@ class ReportsTest(ProgramTest):
             self.assertNotIn(name, ("src", "href", "xlink:href"))
         causes = text[text.index("Where and why"):text.index("Answer")]
         self.assertNotIn("pivot", causes)
+        self.assertEqual(page.headings, ["Question", "Where and why", "Answer", "Local accuracy", "Connected parts", "Warnings",
+                                         "Inputs, work, time", "Not checked"])
+        self.assertEqual(page.tags.count("figure"), 1 + len(document["directions"]))
+        self.assertEqual(page.tags.count("figcaption"), page.tags.count("figure"))
+
+    def rows_of(self, path):
+        with open(path, newline="", encoding="utf-8") as file:
+            return list(csv.DictReader(file))
 
     def test_csv_says_what_the_json_says(self):
-        document, files = self.located()
-        with open(files["csv"], newline="", encoding="utf-8") as file:
-            rows = list(csv.DictReader(file))
+        document, files = self.two_causes()
+        rows = self.rows_of(files["csv"])
         value = {(row["table"], row["item"], row["quantity"]): row["value"] for row in rows}
         self.assertEqual(value["check", "K", "verdict"], document["verdict"])
         for number, direction in enumerate(document["directions"], 1):
@@ -107,29 +133,53 @@ class ReportsTest(ProgramTest):
             self.assertEqual(float(value["directions", str(number), "energy"]), direction["energy"])
             shares = [row for row in rows if row["table"] == "shares" and row["item"] == str(number)]
             self.assertEqual([float(row["value"]) for row in shares], [node["share"] for node in direction["nodes"]])
+        self.assertEqual(len([key for key in value if key[0] == "directions" and key[2] == "kind"]), len(document["directions"]))
+        for spot in document["local_accuracy"]["histogram"]:
+            self.assertIn({"table": "accuracy", "item": "histogram", "quantity": f"{spot['from']:g}", "value": str(spot["equations"])}, rows)
 
     def test_junit(self):
-        document, files = self.located()
+        document, files = self.two_causes()
         suite = xml.etree.ElementTree.parse(files["xml"]).getroot().find("testsuite")
         cases = suite.findall("testcase")
         self.assertEqual(int(suite.get("tests")), len(cases))
         self.assertEqual(len(cases), 1 + len(document["directions"]))
+        for case, direction in zip(cases[1:], document["directions"]):
+            self.assertIn(direction["explanation"], case.find("failure").get("message"))
         self.assertEqual(int(suite.get("failures")), len(suite.findall("testcase/failure")))
         self.assertEqual(len(suite.findall("testcase/failure")), len(cases))
         self.assertEqual(suite.get("name"), "Store & yard")
 
     def test_vtu_is_read_by_another_reader(self):
-        document, files = self.located()
+        document, files = self.two_causes()
         piece = xml.etree.ElementTree.parse(files["vtu"]).getroot().find("UnstructuredGrid/Piece")
         points, cells = int(piece.get("NumberOfPoints")), int(piece.get("NumberOfCells"))
         arrays = {array.get("Name"): array.text.split() for array in piece.iter("DataArray")}
-        self.assertEqual(len(arrays["node"]), points)
-        self.assertEqual(len(arrays["motion_1"]), 3 * points)
-        self.assertEqual(len(arrays["types"]), cells)
-        self.assertEqual(int(arrays["offsets"][-1]), len(arrays["connectivity"]))
-        self.assertLess(max(map(int, arrays["connectivity"])), points)
-        moving = sum(any(abs(float(v)) > 0 for v in arrays["motion_1"][3 * k:3 * k + 3]) for k in range(points))
-        self.assertEqual(moving, document["directions"][0]["moving_nodes"])
+        motions = [f"motion_{k}" for k in range(1, 1 + len(document["directions"]))]
+        self.assertEqual([array.get("Name") for array in piece.iterfind("PointData/DataArray")], ["node", "component", "digits_lost", *motions])
+        for name in ("node", "component", "digits_lost"):
+            self.assertEqual(len(arrays[name]), points, name)
+        for name, direction in zip(motions, document["directions"]):
+            self.assertEqual(len(arrays[name]), 3 * points)
+            moving = sum(any(abs(float(v)) > 0 for v in arrays[name][3 * k:3 * k + 3]) for k in range(points))
+            if direction["kind"] == "loose_part":
+                self.assertEqual(moving, direction["moving_nodes"])
+            self.assertGreater(moving, 0)
+        # Vertices have one point and lines two, which differ; the offsets are where each ends.
+        ends, sizes = 0, {"1": 1, "3": 2}
+        for kind, offset in zip(arrays["types"], arrays["offsets"]):
+            cell = arrays["connectivity"][ends:int(offset)]
+            ends += sizes[kind]
+            self.assertEqual((int(offset), len(set(cell))), (ends, sizes[kind]))
+        self.assertEqual((len(arrays["types"]), len(arrays["offsets"]), ends), (cells, cells, len(arrays["connectivity"])))
+        self.assertEqual(set(map(int, arrays["connectivity"])), set(range(points)))
+        # Places are those of the node file.
+        with open(self.folder / "model" / "nodes.csv", newline="", encoding="utf-8") as file:
+            place = {row["node"]: [float(row[axis]) for axis in "xyz"] for row in csv.DictReader(file)}
+        given = [float(value) for value in piece.find("Points/DataArray").text.split()]
+        for k, node in enumerate(arrays["node"]):
+            self.assertEqual(given[3 * k:3 * k + 3], place[node], node)
+        worst = document["local_accuracy"]["worst"][0]
+        self.assertAlmostEqual(float(arrays["digits_lost"][arrays["node"].index(str(worst["node"]))]), worst["digits"], places=4)
         self.read_with_meshio(files["vtu"], arrays)
         self.read_with_vtk(files["vtu"], points, cells, arrays)
 
@@ -174,16 +224,54 @@ class ReportsTest(ProgramTest):
         self.assertEqual(len(motion["moved"]), 3 * len(motion["nodes"]))
         self.assertEqual(view["node"][motion["marks"][0]], document["directions"][0]["nodes"][0]["node"])
 
-    def test_every_command_has_a_page(self):
+    def answered(self, code, *arguments):
+        """The JSON of a command, its page, the rows of its table, the cases of its suite."""
+        page, table, suite = (self.folder / f"{arguments[0]}.{kind}" for kind in ("html", "csv", "xml"))
+        document = self.expect(code, *arguments, "--html", page, "--csv", table, "--junit", suite)
+        self.validate(page)
+        cases = xml.etree.ElementTree.parse(suite).getroot().findall("testsuite/testcase")
+        return document, outline(page), [tuple(row.values()) for row in self.rows_of(table)], cases
+
+    def test_every_command_says_the_same_everywhere(self):
         folder = self.folder / "plate"
         self.run_program("specimen", "plate", "--unknowns", 600, "--out", folder, "--quiet")
-        for arguments in (["check"], ["forecast"], ["count", "--geometric", folder / "G.mtx", "--at", "1,2,-1"]):
-            page, table, suite = (self.folder / f"{arguments[0]}.{kind}" for kind in ("html", "csv", "xml"))
-            self.expect(0, arguments[0], folder / "K.mtx", *arguments[1:], "--html", page, "--csv", table, "--junit", suite)
-            self.validate(page)
-            self.assertIn("Not checked", " ".join(outline(page).text))
-            xml.etree.ElementTree.parse(suite)
-            self.assertTrue(table.read_text(encoding="utf-8").startswith("table,item,quantity,value\n"))
+        stiffness, pencil = folder / "K.mtx", [folder / "K.mtx", "--geometric", folder / "G.mtx"]
+        found = self.expect(0, "bracket", *pencil, "--first", 3)["critical"]
+        incomplete = self.folder / "list.csv"
+        incomplete.write_text("".join(f"{entry['value']!r}\n" for entry in (found[0], found[2])), encoding="ascii")
+        buckled = self.folder / "buckled.mtx"
+        push_along(stiffness, buckled)
+        of_count = {"below": "below", "level": "level"}
+        of_value = {"value": "value", "low": "low", "high": "high", "multiplicity": "multiplicity", "level": "level"}
+        for code, arguments, key, table, columns in (
+                (0, ["check", stiffness], None, None, None),
+                (0, ["forecast", stiffness], None, None, None),
+                (0, ["count", *pencil, "--at", "1,2,-1,4"], "counts", "counts", of_count),
+                (0, ["sweep", *pencil, "--from", 0, "--to", 8, "--points", 5], "jumps", "jumps", {"low": "low", "high": "high", "count": "count"}),
+                (0, ["bracket", *pencil, "--first", 3], "critical", "critical", of_value),
+                (1, ["audit", *pencil, "--values", incomplete, "--find-missing"], "gaps", "gaps",
+                 {"low": "low", "high": "high", "listed": "listed", "counted": "counted"}),
+                (1, ["audit", *pencil, "--values", incomplete, "--find-missing"], "missing", "missing", of_value),
+                (1, ["check", stiffness, buckled], "steps", "steps", {"verdict": "verdict", "path": "path"})):
+            with self.subTest(command=arguments[0], table=table):
+                document, page, rows, cases = self.answered(code, *arguments)
+                lead = " ".join(" ".join(page.text[:page.text.index("Question")]).split())
+                for sentence in document["in_words"]:
+                    self.assertIn(sentence, lead)
+                self.assertEqual(page.headings[:1] + page.headings[-2:], ["Question", "Inputs, work, time", "Not checked"])
+                self.assertEqual(cases[0].get("name"), f"{arguments[0]} answers well")
+                self.assertEqual(cases[0].find("failure") is None, code == 0)
+                if key is None:
+                    continue
+                self.assertTrue(document[key])
+                entries = document[key]
+                names = [f"{entry['shift']:g}" for entry in entries] if key == "counts" else [str(k + 1) for k in range(len(entries))]
+                expected = {(table, name, quantity, str(entry[member])) for name, entry in zip(names, entries) for quantity, member in columns.items()}
+                written = {row for row in rows if row[0] == table and row[2] in columns}
+                same = lambda row: (*row[:3], float(row[3]) if row[2] not in ("verdict", "level", "path") else row[3])
+                self.assertEqual(set(map(same, written)), set(map(same, expected)))
+                if key in ("counts", "gaps", "steps"):
+                    self.assertEqual(len(cases), 1 + len(entries))
 
     def test_no_grid_without_places(self):
         folder = self.folder / "solid"
