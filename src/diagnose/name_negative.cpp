@@ -90,11 +90,12 @@ class NegativeNamer {
         ranked(s_, rows, std::vector<double>(rows.size(), 1.0 / static_cast<double>(count)), kShownShares);
     CauseFacts facts;
     facts.unresolved_because = fmt::format(
-        "{} no stiffness of {} own and {} on others, as the multipliers of constraints do, {} among them; "
+        "{} no stiffness of {} own and {} on others, as the multipliers of constraints do{}; "
         "multipliers bring a negative direction each that is none of the structure. No cause is named before "
         "it is known which equations are multipliers.",
-        count == 1 ? "One equation has" : fmt::format("{} equations have", count),
-        count == 1 ? "its" : "their", count == 1 ? "acts" : "act", place_of(direction));
+        count == 1 ? place_of(direction) + " has" : fmt::format("{} equations have", count),
+        count == 1 ? "its" : "their", count == 1 ? "acts" : "act",
+        count == 1 ? "" : ", " + place_of(direction) + " among them");
     e_.add(std::move(direction), std::move(facts));
     e_.out.directions.back().remedy =
         "List the multipliers (--multipliers FILE, or dof \"multiplier\" in the dof map); if they are none, "
@@ -222,6 +223,7 @@ class NegativeNamer {
     direction.cause = Cause::kNegativeSpring;
     facts.place = s_.describe(springs_[best].row);
     facts.stiffness = springs_[best].stiffness;
+    facts.felt = springs_[best].felt;
     lead_with(direction, springs_[best].row, moving, share);
     return true;
   }

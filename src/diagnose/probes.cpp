@@ -92,8 +92,7 @@ std::vector<std::array<double, 6>> rigid_energies(const Structure& s, const Rigi
 namespace {
 
 /// Equations with a negative diagonal entry none of whose neighbours has one: no sum of sound elements gives
-/// that. The stiffness stated is twice the entry, a lower bound in size of what to add to make the equation
-/// sound again.
+/// that. The spring is stronger than the entry, for what is sound adds to it; twice the entry stands for it.
 std::vector<NegativeSpring> negative_diagonals(const Structure& s, const ShiftedMatrix& matrix) {
   std::vector<char> beside(static_cast<std::size_t>(s.rows), 0);
   const MatrixFamily& family = *matrix.family;
@@ -111,7 +110,7 @@ std::vector<NegativeSpring> negative_diagonals(const Structure& s, const Shifted
     const auto p = static_cast<std::size_t>(row);
     if (s.kind[p] == DofKind::kMultiplier || !(s.diagonal[p] < 0) || beside[p]) continue;
     const double scale = (*matrix.scale)[row];
-    springs.push_back({row, 2 * s.diagonal[p] / (scale * scale), false});
+    springs.push_back({row, 2 * s.diagonal[p] / (scale * scale)});
   }
   return springs;
 }
@@ -123,7 +122,7 @@ std::vector<NegativeSpring> find_negative_springs(const Structure& s, const Shif
   struct Candidate {
     Index row;
     std::size_t column;
-    double push;      ///< force over k_ii, negative
+    double push;      ///< the force, against the motion that it should resist
     double felt = 0;  ///< by the neighbours
   };
   std::vector<Candidate> candidates;
@@ -165,7 +164,7 @@ std::vector<NegativeSpring> find_negative_springs(const Structure& s, const Shif
     std::erase_if(springs, [&](const NegativeSpring& spring) { return spring.row == candidate.row; });
     const double s_i = (*matrix.scale)[candidate.row];
     const double scaled = candidate.push / probe.motion.row(candidate.row)[candidate.column];
-    springs.push_back({candidate.row, scaled / (s_i * s_i), false});
+    springs.push_back({candidate.row, scaled / (s_i * s_i), true});
   }
   if (springs.empty()) return springs;
   // n-(A + t e e^T) = n-(A) - 1 exactly when 1 + t e^T A^-1 e < 0, t > 0.

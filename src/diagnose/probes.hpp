@@ -26,8 +26,9 @@ std::vector<std::array<double, 6>> rigid_energies(const Structure& structure, co
 /// are not; or, under a translation of everything its equation alone, among those it touches, feels a force,
 /// and one that pushes along.
 struct NegativeSpring {
-  Index row = 0;          ///< position
-  double stiffness = 0;   ///< negative, in the unit of K
+  Index row = 0;         ///< position
+  double stiffness = 0;  ///< negative, in the unit of K; see `felt`
+  bool felt = false;     ///< by a translation: the stiffness is the spring's. Otherwise it is twice the entry
   bool decisive = false;  ///< taking it away takes exactly one negative direction away (one solve shows it)
 };
 std::vector<NegativeSpring> find_negative_springs(const Structure& structure, const ShiftedMatrix& matrix,

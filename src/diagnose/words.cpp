@@ -112,10 +112,9 @@ std::string sentence_of(const CauseFacts& f) {
                  ? fmt::format("{}: the equation has no stiffness at all; nothing is attached to this dof.",
                                f.place)
                  : fmt::format(
-                       "{} equations ({}) at {}, {} among them, have no stiffness at all: nothing is "
-                       "attached to "
+                       "{} equations{}, {} among them, have no stiffness at all: nothing is attached to "
                        "these dofs.",
-                       f.count, f.dof, nodes_in_words(f), f.place);
+                       f.count, f.named ? fmt::format(" ({}) at {}", f.dof, nodes_in_words(f)) : "", f.place);
     case Cause::kMissingRotation:
       return fmt::format(
           "{}: nothing resists a rotation of the node itself, {} in all; the elements there have no "
@@ -131,6 +130,14 @@ std::string sentence_of(const CauseFacts& f) {
             f.place, f.other_place, f.stiffness, f.along,
             f.essential ? "With the opposite sign one negative direction is gone"
                         : "Taking it away takes one negative direction away");
+      }
+      if (!f.felt) {
+        return fmt::format(
+            "{}: the diagonal entry is {:.4g} and none beside it is negative: a spring to the ground pushes "
+            "along instead of back, more strongly than that. Adding {:.4g} there takes one negative "
+            "direction "
+            "away (checked with the factor).",
+            f.place, f.stiffness / 2, -f.stiffness);
       }
       return fmt::format(
           "{}: a spring to the ground of stiffness {:.4g} pushes along instead of back. Taking it away takes "

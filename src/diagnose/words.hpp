@@ -26,6 +26,7 @@ struct CauseFacts {
   std::string seam;   ///< "nodes 12 and 840 lie at one place", when there is such a pair
   std::string hangs;  ///< "node 12", "nodes 12, 13 and 6 more": at rest beside what moves; may be empty
   double energy = 0, stiffness = 0, digits = 0;
+  bool felt = true;  ///< the stiffness is that of a spring; otherwise twice the entry, which is negative
   std::string unresolved_because;
   bool resolution_given = false;  ///< by whoever asked
 };
