@@ -18,11 +18,14 @@ namespace {
 constexpr double kDefiniteGuess = 0x1p-40, kGeneralGuess = 0x1p-32;
 /// Where factors are thin, bounds are small, and eigenvalues lie close: a large c would leave some undecided.
 constexpr double kThinGuess = 0x1p-36;
+/// A shift of this share of the matrix lies amid the spectrum, where pivots grow and bounds with them, but
+/// eigenvalues lie apart by the norm over n on average: c may be that over kApart, up to kDeepGuess.
+constexpr double kDeepShare = 0x1p-5, kApart = 1024, kDeepGuess = 0x1p-24;
 constexpr double kExtendedDefiniteGuess = 0x1p-88, kExtendedGeneralGuess = 0x1p-84;
 /// A retry takes this many times the bound just reported: a changed offset moves the bound a little.
 constexpr double kMargin = 2.0;
 /// A resolution this many times its bounds is worth sharpening when zeros were left.
-constexpr double kSharpenAbove = 8.0;
+constexpr double kSharpenAbove = 8.0, kSharpenDeepAbove = 3.0;
 constexpr int kMostRounds = 3;
 
 /// Three digits, not less than `value`.
@@ -47,6 +50,7 @@ class OffsetScheme {
       certificate.level = Level::kProved;
       return found_;
     }
+    deep_ = !options_.resolution && !options_.extended && is_deep(norm);
     double offset = options_.resolution.value_or(std::max(norm, 0x1p-500) * guess(options_.definite_first));
     if (!options_.resolution) offset = std::max(offset, kMargin * options_.data_error);
     if (options_.definite_first) {
@@ -69,9 +73,18 @@ class OffsetScheme {
     Index negative = 0;
   };
 
+  /// True when what the shift adds is no small part of the matrix.
+  bool is_deep(double norm) const {
+    if (matrix_.coefficients.size() < 2 || matrix_.coefficients.back() == 0) return false;
+    ShiftedMatrix added = matrix_;
+    added.coefficients.front() = 0;
+    return infinity_norm(added, &pool_) >= kDeepShare * norm;
+  }
+
   double guess(bool definite) const {
     if (options_.extended) return definite ? kExtendedDefiniteGuess : kExtendedGeneralGuess;
     if (definite) return kDefiniteGuess;
+    if (deep_) return std::clamp(1 / (kApart * static_cast<double>(rows_)), kGeneralGuess, kDeepGuess);
     return has_thin_factor(analysis_) ? kThinGuess : kGeneralGuess;
   }
 
@@ -199,8 +212,9 @@ class OffsetScheme {
       }
       settle(rows_ - below->negative, above->negative, offset, below->bound);
       have_answer = true;
-      const bool worth_sharpening = options_.sharpen && found_.inertia.zero > 0 && !options_.resolution &&
-                                    offset > kSharpenAbove * bound;
+      const bool worth_sharpening =
+          found_.inertia.zero > 0 && !options_.resolution &&
+          (deep_ ? offset > kSharpenDeepAbove * bound : options_.sharpen && offset > kSharpenAbove * bound);
       if (!worth_sharpening) return found_;
       offset = kMargin * bound;
     }
@@ -213,6 +227,7 @@ class OffsetScheme {
   const OffsetOptions& options_;
   ThreadPool& pool_;
   Index rows_;
+  bool deep_ = false;  ///< the shift lies amid the spectrum
   CertifiedInertia found_;
 };
 

@@ -3,6 +3,7 @@
 #include <gtest/gtest.h>
 
 #include <algorithm>
+#include <array>
 
 #include "support/factored.hpp"
 #include "support/generators.hpp"
@@ -56,6 +57,29 @@ TEST(Certify, WithoutMemoryForTheFactorTwoOffsetsAnswer) {
   EXPECT_EQ(found.certificate.level, Level::kProved);
   EXPECT_GE(found.factorizations, 2);
   EXPECT_EQ(risk.spent(), 0);
+}
+
+TEST(Certify, AShiftAmidTheSpectrumStartsFromAnOffsetThatHolds) {
+  const SymmetricMatrix box = laplacian(14, 14, 15);
+  std::vector<Triplet> ones;
+  for (Index i = 0; i < box.rows; ++i) ones.push_back({i, i, 1});
+  const SymmetricMatrix identity = from_triplets(box.rows, ones);
+  test::Prepared prepared = prepare(box, 2);
+  const std::array<const SymmetricMatrix*, 2> members{&box, &identity};
+  prepared.family = permute(unite(members), prepared.analysis.tree.position_of);
+  ShiftedMatrix shifted = prepared.shifted(0);
+  auto spectrum = test::laplacian_spectrum(14, 14, 15);  // closed form
+  for (const double shift : {0.51, 2.01, 5.97}) {
+    shifted.coefficients = {1, -shift};
+    OffsetOptions options;
+    options.sharpen = false;  // as in counts of pencils
+    const auto found = certify_by_offsets(prepared.analysis, shifted, options, *prepared.pool);
+    ASSERT_TRUE(found.ok());
+    EXPECT_EQ(found->factorizations, 2) << shift;
+    EXPECT_EQ(found->inertia.zero, 0) << shift;
+    EXPECT_EQ(found->inertia.negative,
+              std::count_if(spectrum.begin(), spectrum.end(), [&](double value) { return value < shift; }));
+  }
 }
 
 TEST(Certify, SingularEndsAtAResolutionAfterARefusedAttemptThatIsCharged) {
