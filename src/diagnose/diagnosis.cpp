@@ -23,7 +23,7 @@ Diagnosis diagnose(const DiagnosisInput& input, ThreadPool& pool) {
   const Stopwatch watch;
   Diagnosis diagnosis;
   Evidence e(input, pool);
-  if (e.inertia.zero > 0) e.motions = find_node_motions(e.s, input.matrix);
+  if (e.inertia.zero > 0) e.motions = find_node_motions(e.s, input.matrix, pool);
   if (look_near_zero(e)) {
     diagnosis.sharper_resolution = std::max(4 * e.bound(), 0x1p-46 * e.resolution);
     return diagnosis;

@@ -3,10 +3,13 @@
 #include <algorithm>
 #include <cmath>
 
+#include "base/ranges.hpp"
+
 namespace stanchion {
 namespace {
 
 constexpr Index kV = kBlockVectors;
+constexpr Offset kFrontsAPiece = 256;
 
 /// Eigenvalues and the rotation (columns) of [a b; b c].
 struct PairEigen {
@@ -28,7 +31,7 @@ void KeptFactor::scale(double* block, Power power) const {
     if (power == Power::kInverse) return 1 / d;
     return power == Power::kAbsoluteInverse ? 1 / std::fabs(d) : 1 / std::sqrt(std::fabs(d));
   };
-  for (const FactorFront& front : factor_.fronts) {
+  const auto scale_front = [&](const FactorFront& front) {
     for (Index k = 0; k < front.pivots; ++k) {
       double* first = block + Offset{front.position[k]} * kV;
       if (front.kind[k] != PivotKind::kTwoFirst) {
@@ -47,7 +50,10 @@ void KeptFactor::scale(double* block, Power power) const {
       }
       ++k;
     }
-  }
+  };
+  for_ranges(pool_, static_cast<Offset>(factor_.fronts.size()), kFrontsAPiece, [&](Offset begin, Offset end) {
+    for (Offset f = begin; f < end; ++f) scale_front(factor_.fronts[static_cast<std::size_t>(f)]);
+  });
 }
 
 void KeptFactor::solve(Columns& x) {

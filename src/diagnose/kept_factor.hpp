@@ -15,7 +15,7 @@ class KeptFactor {
  public:
   /// The arguments outlive it; L is in double precision.
   KeptFactor(const Analysis& analysis, const Factor& factor, ThreadPool& pool)
-      : factor_(factor), solver_(analysis, factor, pool) {}
+      : factor_(factor), pool_(pool), solver_(analysis, factor, pool) {}
 
   /// x := (A_s - cI)^-1 x.
   void solve(Columns& x);
@@ -48,6 +48,7 @@ class KeptFactor {
   void scale(double* block, Power power) const;
 
   const Factor& factor_;
+  ThreadPool& pool_;
   BlockSolver solver_;
   LongVector<double> block_;  ///< eight columns of what is solved for
 };

@@ -2,7 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
-#include <tuple>
+#include <cstdint>
 #include <utility>
 
 #include "base/counter_random.hpp"
@@ -18,7 +18,11 @@ constexpr double kRoundingResidual = 3e-15, kRelativeResidual = 1e-4;
 constexpr double kRoughResidual = 0.1;  ///< of the first pair behind the gap
 constexpr double kGapInSight = 20;      ///< estimates from above only bring values closer together
 
-/// `start`, and random columns after it.
+double between_minus_one_and_one(std::uint64_t word) {
+  return static_cast<double>(static_cast<std::int64_t>(word)) * 0x1p-63;
+}
+
+/// `start`, and random columns after it: for an iteration uniform numbers are as good as any, and cheap.
 Columns filled_up(Columns start, Index rows, Index count, std::uint64_t seed, ThreadPool& pool) {
   Columns x(rows, count);
   const CounterRandom random(seed, 0x6c6f63617465ULL + static_cast<std::uint64_t>(start.count));
@@ -29,8 +33,9 @@ Columns filled_up(Columns start, Index rows, Index count, std::uint64_t seed, Th
       if (start.count > 0) std::copy_n(start.row(i), start.count, row);
       const auto number = static_cast<std::uint64_t>(Offset{i} * fresh / 2);
       for (Index v = 0; v < fresh; v += 2) {
-        std::tie(row[start.count + v], row[start.count + v + 1]) =
-            random.gaussians(number + static_cast<std::uint64_t>(v / 2));
+        const auto [first, second] = random.words(number + static_cast<std::uint64_t>(v / 2));
+        row[start.count + v] = between_minus_one_and_one(first);
+        row[start.count + v + 1] = between_minus_one_and_one(second);
       }
     }
   });
@@ -63,9 +68,25 @@ double open_residual(const NearZero& found, const NearZeroOptions& options) {
   return most;
 }
 
-void project_all(const Structure& s, NearZero& found, Columns& product) {
-  for (PartPairs& pairs : found.parts)
+/// Parts share no row: each is one thread's work.
+template <class Work>
+void each_part(NearZero& found, ThreadPool& pool, const Work& work) {
+  pool.run(static_cast<Offset>(found.parts.size()),
+           [&](Offset part, int) { work(found.parts[static_cast<std::size_t>(part)]); });
+}
+
+void orthonormalise_all(const Structure& s, NearZero& found, LongVector<double>& scratch, ThreadPool& pool) {
+  scratch.resize(found.x.values.size());
+  each_part(found, pool, [&](PartPairs& pairs) {
+    const Offset before = s.first_of_part[static_cast<std::size_t>(pairs.part)];
+    pairs.used = orthonormalise(found.x, s.part(pairs.part), scratch.data() + before * found.x.count);
+  });
+}
+
+void project_all(const Structure& s, NearZero& found, Columns& product, ThreadPool& pool) {
+  each_part(found, pool, [&](PartPairs& pairs) {
     pairs.ritz = project(found.x, product, s.part(pairs.part), pairs.used, true);
+  });
 }
 
 }  // namespace
@@ -93,12 +114,10 @@ NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix,
     found.rounds = round;
     factor.solve(found.x);
     remove(motions, structure, found.x);
-    for (PartPairs& pairs : found.parts) {
-      pairs.used = orthonormalise(found.x, structure.part(pairs.part), scratch);
-    }
+    orthonormalise_all(structure, found, scratch, pool);
     if (round == 1) continue;
-    multiply(matrix, found.x, product);
-    project_all(structure, found, product);
+    multiply(matrix, found.x, product, pool);
+    project_all(structure, found, product, pool);
     found.cut_short = any_told_apart(found, options);
     if (found.cut_short) break;
     const double open = open_residual(found, options);
@@ -108,7 +127,7 @@ NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix,
   }
   LongVector<double>().swap(scratch);
   multiply_extended(matrix, found.x, product, pool);
-  project_all(structure, found, product);
+  project_all(structure, found, product, pool);
   return found;
 }
 

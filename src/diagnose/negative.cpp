@@ -49,7 +49,7 @@ class Iteration {
  private:
   /// The matrix, or what it is on the motions that the constraints leave: P A P.
   Columns applied(const Columns& x, Index from = 0) const {
-    Columns y = times(search_.matrix, x, from);
+    Columns y = times(search_.matrix, x, pool_, from);
     if (space_ != nullptr) space_->project(y);
     return y;
   }

@@ -2,7 +2,9 @@
 
 #include <algorithm>
 #include <cmath>
+#include <iterator>
 
+#include "base/ranges.hpp"
 #include "diagnose/small_eigen.hpp"
 
 namespace stanchion {
@@ -10,15 +12,17 @@ namespace {
 
 /// Bound on ||A_s v||_inf, rows of A_s being about 1: some hundred times the rounding of an assembled entry.
 constexpr double kNodeMotionLimit = 1e-12;
+constexpr Offset kColumnsAPiece = 8192, kNodesAPiece = 2048;
 
 class Finder {
  public:
-  Finder(const Structure& structure, const ShiftedMatrix& matrix) : s_(structure), matrix_(matrix) {}
+  Finder(const Structure& structure, const ShiftedMatrix& matrix, ThreadPool& pool)
+      : s_(structure), matrix_(matrix), pool_(pool) {}
 
   std::vector<NodeMotion> run() {
     place_rows();
     gather_blocks();
-    for (Index node = 0; node < s_.nodes; ++node) propose(node);
+    propose_all();
     return confirmed();
   }
 
@@ -41,23 +45,39 @@ class Finder {
 
   void gather_blocks() {
     blocks_.assign(static_cast<std::size_t>(block_start_.back()), 0.0);
+    // An entry has its own two places in a block, whichever thread takes its column.
+    for_ranges(pool_, s_.rows, kColumnsAPiece, [&](Offset begin, Offset end) {
+      for (auto j = static_cast<Index>(begin); j < end; ++j) gather_column(j);
+    });
+  }
+
+  void gather_column(Index j) {
     const MatrixFamily& family = *matrix_.family;
-    for (Index j = 0; j < family.rows; ++j) {
-      const Index node = s_.node_of[static_cast<std::size_t>(j)];
-      const Index m = rows_of(node);
-      if (m > kMostRows) continue;
-      for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-        const Index i = family.row[k];
-        if (s_.node_of[static_cast<std::size_t>(i)] != node) continue;
-        const Index p = local_[static_cast<std::size_t>(i)], q = local_[static_cast<std::size_t>(j)];
-        double* block = blocks_.data() + block_start_[static_cast<std::size_t>(node)];
-        block[p * m + q] = block[q * m + p] = matrix_.entry(k, i, j);
-      }
+    const Index node = s_.node_of[static_cast<std::size_t>(j)];
+    const Index m = rows_of(node);
+    if (m > kMostRows) return;
+    for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
+      const Index i = family.row[k];
+      if (s_.node_of[static_cast<std::size_t>(i)] != node) continue;
+      const Index p = local_[static_cast<std::size_t>(i)], q = local_[static_cast<std::size_t>(j)];
+      double* block = blocks_.data() + block_start_[static_cast<std::size_t>(node)];
+      block[p * m + q] = block[q * m + p] = matrix_.entry(k, i, j);
     }
   }
 
+  /// Candidates in the order of their nodes.
+  void propose_all() {
+    std::vector<std::vector<NodeMotion>> pieces(static_cast<std::size_t>(s_.nodes / kNodesAPiece) + 1);
+    for_ranges(pool_, s_.nodes, kNodesAPiece, [&](Offset begin, Offset end) {
+      std::vector<NodeMotion>& found = pieces[static_cast<std::size_t>(begin / kNodesAPiece)];
+      for (auto node = static_cast<Index>(begin); node < end; ++node) propose(node, found);
+    });
+    for (std::vector<NodeMotion>& piece : pieces)
+      std::move(piece.begin(), piece.end(), std::back_inserter(found_));
+  }
+
   /// Null vectors of the node's own block: all candidates there are, if A is semidefinite.
-  void propose(Index node) {
+  void propose(Index node, std::vector<NodeMotion>& found) const {
     const Index m = rows_of(node);
     const auto a = static_cast<std::size_t>(node);
     if (m > kMostRows) return;
@@ -73,7 +93,7 @@ class Finder {
       } else if (s_.empty[position]) {
         NodeMotion motion{node, std::vector<double>(n, 0.0), true};
         motion.entry[r] = 1;
-        found_.push_back(std::move(motion));
+        found.push_back(std::move(motion));
         block[r * n + r] = 1;
         done[r] = 1;
       }
@@ -83,7 +103,7 @@ class Finder {
     for (std::size_t k = 0; k < n && std::fabs(eigen.values[k]) <= kNodeMotionLimit; ++k) {
       NodeMotion motion{node, std::vector<double>(n), false};
       for (std::size_t i = 0; i < n; ++i) motion.entry[i] = eigen.vectors[i * n + k];
-      found_.push_back(std::move(motion));
+      found.push_back(std::move(motion));
     }
   }
 
@@ -145,6 +165,7 @@ class Finder {
 
   const Structure& s_;
   const ShiftedMatrix& matrix_;
+  ThreadPool& pool_;
   std::vector<Index> local_;         ///< position -> row within its node
   std::vector<Offset> block_start_;  ///< node -> its block in blocks_
   std::vector<double> blocks_;
@@ -153,8 +174,9 @@ class Finder {
 
 }  // namespace
 
-std::vector<NodeMotion> find_node_motions(const Structure& structure, const ShiftedMatrix& matrix) {
-  return Finder(structure, matrix).run();
+std::vector<NodeMotion> find_node_motions(const Structure& structure, const ShiftedMatrix& matrix,
+                                          ThreadPool& pool) {
+  return Finder(structure, matrix, pool).run();
 }
 
 void remove(const std::vector<NodeMotion>& motions, const Structure& structure, Columns& x) {

@@ -3,6 +3,7 @@
 
 #include <vector>
 
+#include "base/threads.hpp"
 #include "diagnose/columns.hpp"
 #include "diagnose/structure.hpp"
 
@@ -17,7 +18,8 @@ struct NodeMotion {
 
 /// All of them, mutually orthogonal. Cost: one pass over the entries and an eigenproblem of each node's own
 /// block. Multipliers are left out: their diagonal is rightly zero.
-std::vector<NodeMotion> find_node_motions(const Structure& structure, const ShiftedMatrix& matrix);
+std::vector<NodeMotion> find_node_motions(const Structure& structure, const ShiftedMatrix& matrix,
+                                          ThreadPool& pool);
 
 /// x := x less its parts along the motions.
 void remove(const std::vector<NodeMotion>& motions, const Structure& structure, Columns& x);

@@ -50,12 +50,14 @@ void subtract_along(const double* q, Index basis, double* b, Index columns, Inde
 
 }  // namespace
 
-void multiply(const ShiftedMatrix& matrix, const Columns& x, Columns& y, Index from) {
+void multiply(const ShiftedMatrix& matrix, const Columns& x, Columns& y, ThreadPool& pool, Index from) {
   const MatrixFamily& family = *matrix.family;
   y.rows = x.rows;
   y.count = x.count;
   y.values.assign(x.values.size(), 0.0);
-  for (Index first = from; first < x.count; first += kBlockVectors) {  // eight at a time stay in registers
+  // Eight at a time stay in registers.
+  pool.run((x.count - from) / kBlockVectors, [&](Offset block, int) {
+    const Index first = from + static_cast<Index>(block) * kBlockVectors;
     for (Index j = 0; j < family.rows; ++j) {
       const double* x_j = x.row(j) + first;
       double* y_j = y.row(j) + first;
@@ -71,12 +73,12 @@ void multiply(const ShiftedMatrix& matrix, const Columns& x, Columns& y, Index f
       }
       for (Index c = 0; c < kBlockVectors; ++c) y_j[c] += sum[c];
     }
-  }
+  });
 }
 
-Columns times(const ShiftedMatrix& matrix, const Columns& x, Index from) {
+Columns times(const ShiftedMatrix& matrix, const Columns& x, ThreadPool& pool, Index from) {
   Columns y;
-  multiply(matrix, x, y, from);
+  multiply(matrix, x, y, pool, from);
   return y;
 }
 
@@ -96,17 +98,16 @@ Columns times_extended(const ShiftedMatrix& matrix, const Columns& x, ThreadPool
 }
 
 Index orthonormalise(Columns& x, RowGroup group) {
-  LongVector<double> scratch;
-  return orthonormalise(x, group, scratch);
+  LongVector<double> scratch(group.size() * static_cast<std::size_t>(x.count));
+  return orthonormalise(x, group, scratch.data());
 }
 
-Index orthonormalise(Columns& x, RowGroup group, LongVector<double>& local) {
+Index orthonormalise(Columns& x, RowGroup group, double* local) {
   constexpr Index kWidth = 8;  // columns that go through the basis together
   const std::size_t n = group.size();
   const auto rows = static_cast<Index>(n);
-  local.resize(n * static_cast<std::size_t>(x.count));
-  gather_rows(x, group, 0, n, x.count, local.data(), n);
-  const auto column = [&](Index c) { return local.data() + static_cast<std::size_t>(c) * n; };
+  gather_rows(x, group, 0, n, x.count, local, n);
+  const auto column = [&](Index c) { return local + static_cast<std::size_t>(c) * n; };
   Index used = 0;
   for (Index first = 0; first < x.count && used < rows; first += kWidth) {
     // The block's columns that are not zero, of unit length, next to the basis.
@@ -119,7 +120,7 @@ Index orthonormalise(Columns& x, RowGroup group, LongVector<double>& local) {
       for (std::size_t i = 0; i < n; ++i) to[i] = from[i] / before;
     }
     const Index basis = used;
-    for (int pass = 0; pass < 2; ++pass) subtract_along(local.data(), basis, column(basis), width, rows);
+    for (int pass = 0; pass < 2; ++pass) subtract_along(local, basis, column(basis), width, rows);
     for (Index c = 0; c < width && used < rows; ++c) {
       double* own = column(basis + c);
       double left = length(own, n);
@@ -130,7 +131,7 @@ Index orthonormalise(Columns& x, RowGroup group, LongVector<double>& local) {
           for (std::size_t i = 0; i < n; ++i) own[i] -= along * earlier[i];
         }
         // What little is left may lie along the basis again.
-        if (pass == 0) subtract_along(local.data(), basis, own, 1, rows);
+        if (pass == 0) subtract_along(local, basis, own, 1, rows);
         left = length(own, n);
       }
       if (left < kIndependent) continue;

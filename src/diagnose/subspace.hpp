@@ -12,9 +12,9 @@ namespace stanchion {
 
 /// y = A x in double precision, for shapes and iterations; what is judged goes through extended_product.
 /// Columns before `from`, a multiple of eight, are left zero. `y` takes the size of `x`; memory that it has
-/// is used again.
-void multiply(const ShiftedMatrix& matrix, const Columns& x, Columns& y, Index from = 0);
-Columns times(const ShiftedMatrix& matrix, const Columns& x, Index from = 0);
+/// is used again. Eight columns are one thread's work.
+void multiply(const ShiftedMatrix& matrix, const Columns& x, Columns& y, ThreadPool& pool, Index from = 0);
+Columns times(const ShiftedMatrix& matrix, const Columns& x, ThreadPool& pool, Index from = 0);
 
 /// y = A x accumulated in double-double and rounded once.
 void multiply_extended(const ShiftedMatrix& matrix, const Columns& x, Columns& y, ThreadPool& pool);
@@ -25,8 +25,8 @@ using RowGroup = std::span<const Index>;
 
 /// Gram-Schmidt by blocks, twice, over the rows of `group` only. Columns that depend on earlier ones are
 /// dropped; what is left moves to the front, the rest of the group's rows becomes zero. Returns how many are
-/// left. `scratch` is space of its own, kept by whoever calls often: the group's rows of all columns.
-Index orthonormalise(Columns& x, RowGroup group, LongVector<double>& scratch);
+/// left. `scratch` has room for the group's rows of all columns.
+Index orthonormalise(Columns& x, RowGroup group, double* scratch);
 Index orthonormalise(Columns& x, RowGroup group);
 
 /// Ritz values of orthonormal columns x[0..used) with ax = A x over a group; the columns (and ax) are
