@@ -216,26 +216,26 @@ Result<bool> ModeSearch::iterate(const std::function<bool()>& enough) {
 
 Result<std::vector<ResidualPair>> ModeSearch::pairs_of(const std::vector<Candidate>& list, std::size_t many) {
   std::vector<ResidualPair> pairs;
+  ResidualWork work(base_.base, base_.second);
   constexpr auto kV = static_cast<std::size_t>(kBlockVectors);
   for (std::size_t first = 0; first < many; first += kV) {
     if (interrupted()) return Status::interrupted();
     std::vector<RitzValue> chosen;
     for (std::size_t k = first; k < std::min(first + kV, many); ++k) chosen.push_back(list[k].ritz);
-    append(pairs, residual_pairs(base_.base, base_.second, lanczos_->vectors(chosen),
-                                 static_cast<Index>(chosen.size())));
+    append(pairs, work.pairs(lanczos_->vectors(chosen), static_cast<Index>(chosen.size())));
   }
   // A step of inverse iteration towards the largest would lead away from values inside.
   const double expected = squares() ? worst_expected(pairs, closeness()) : worst(pairs);
-  if (!centre_ && !pairs.empty() && expected > request_.bracket.width / 3) refine(pairs);
+  if (!centre_ && !pairs.empty() && expected > request_.bracket.width / 3) refine(work, pairs);
   return pairs;
 }
 
-void ModeSearch::refine(std::vector<ResidualPair>& pairs) {
+void ModeSearch::refine(ResidualWork& work, std::vector<ResidualPair>& pairs) {
   constexpr auto kV = static_cast<std::size_t>(kBlockVectors);
   for (const ResidualPair& pair : pairs) {
     if (!(std::fabs(pair.theta) > 0) || !std::isfinite(pair.radius)) return;
   }
-  const auto better = refined_coordinates(base_.base, base_.second, pairs);
+  const auto better = work.refined_coordinates(pairs);
   std::vector<ResidualPair> fresh;
   const std::size_t rows = better.empty() ? 0 : better.front().size();
   for (std::size_t first = 0; first < better.size(); first += kV) {
@@ -244,7 +244,7 @@ void ModeSearch::refine(std::vector<ResidualPair>& pairs) {
     for (std::size_t v = 0; v < count; ++v) {
       for (std::size_t i = 0; i < rows; ++i) block[i * kV + v] = better[first + v][i];
     }
-    append(fresh, residual_pairs(base_.base, base_.second, block, static_cast<Index>(count)));
+    append(fresh, work.pairs(block, static_cast<Index>(count)));
   }
   if (worst(fresh) < worst(pairs)) pairs = std::move(fresh);
 }

@@ -59,7 +59,7 @@ class ModeSearch {
   double closeness() const;
   bool squares() const;
   bool interrupted() const;
-  void refine(std::vector<ResidualPair>& pairs);
+  void refine(ResidualWork& work, std::vector<ResidualPair>& pairs);
 
   PencilCounter& counter_;
   SpectralBase& base_;

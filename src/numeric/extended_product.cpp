@@ -40,11 +40,18 @@ struct Joined {
 }  // namespace
 
 void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, ThreadPool& pool) {
+  Buffer<double> memory;
+  extended_times(matrix, y, b, memory, pool);
+}
+
+void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, Buffer<double>& memory,
+                    ThreadPool& pool) {
   const MatrixFamily& family = *matrix.family;
   const Buffer<double>& scales = *matrix.scale;
   const Offset size = Offset{family.rows} * kV;
   // One piece of memory for the scaled vectors and two sums a range: large enough for large pages early.
-  Buffer<double> memory(size * (1 + 2 * kRanges));
+  constexpr Offset kBlocks = 1 + 2 * kRanges;
+  if (memory.size() < size * kBlocks) memory = Buffer<double>(size * kBlocks);
   double* const scaled = memory.data();
   std::array<double*, kRanges> high, low;
   for (std::size_t r = 0; r < kRanges; ++r) {

@@ -15,6 +15,10 @@ namespace stanchion {
 /// bytes a row twice.
 void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, ThreadPool& pool);
 
+/// The same in `memory`, made large enough if it is not: for whoever calls often.
+void extended_times(const ShiftedMatrix& matrix, const double* y, double* b, Buffer<double>& memory,
+                    ThreadPool& pool);
+
 /// Size of a matrix for error bounds.
 struct AbsoluteNorm {
   double norm = 0;         ///< at least || sum_t |c_t| S |A_t| S + |offset| I ||_inf

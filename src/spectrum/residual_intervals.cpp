@@ -15,15 +15,19 @@ namespace {
 constexpr auto kV = static_cast<std::size_t>(kBlockVectors);
 constexpr double kUnit = 0x1p-53;
 
-ColumnSums dots(ThreadPool& pool, const std::vector<double>& a, const std::vector<double>& b) {
+using Block = LongVector<double>;
+
+ColumnSums dots(ThreadPool& pool, const Block& a, const Block& b) {
   return column_dots(a.data(), b.data(), static_cast<Offset>(a.size() / kV), pool);
 }
 
-ColumnSums norms(ThreadPool& pool, const std::vector<double>& block) {
+template <class Vectors>
+ColumnSums norms(ThreadPool& pool, const Vectors& block) {
   return column_norms(block.data(), static_cast<Offset>(block.size() / kV), pool);
 }
 
-std::vector<double> column_of(const std::vector<double>& block, std::size_t v) {
+template <class Vectors>
+std::vector<double> column_of(const Vectors& block, std::size_t v) {
   std::vector<double> column(block.size() / kV);
   for (std::size_t i = 0; i < column.size(); ++i) column[i] = block[i * kV + v];
   return column;
@@ -82,30 +86,38 @@ double gram_defect(const DefiniteBase& base, const std::vector<ResidualPair>& pa
   return 1.001 * (std::sqrt(deviation) + base.relative() * (y + h) * (y + h) + 2 * y * h + h * h);
 }
 
-std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix& second,
-                                         const std::vector<double>& coordinates, Index count) {
-  std::vector<double> x = coordinates;
-  base.transposed_solve(x.data());
-  std::vector<double> bx(x.size()), cx(x.size());
-  extended_times(base.matrix(), x.data(), bx.data(), base.pool());
-  extended_times(second, x.data(), cx.data(), base.pool());
-  ThreadPool& pool = base.pool();
-  const ColumnSums energy = dots(pool, x, bx), work = dots(pool, x, cx);
-  const AbsoluteNorm base_size = absolute_norm(base.matrix(), pool),
-                     second_size = absolute_norm(second, pool);
-  const ColumnSums x_norm = norms(pool, x), b_norm = norms(pool, bx), c_norm = norms(pool, cx);
+ResidualWork::ResidualWork(DefiniteBase& base, const ShiftedMatrix& second)
+    : base_(base),
+      second_(second),
+      base_size_(absolute_norm(base.matrix(), base.pool())),
+      second_size_(absolute_norm(second, base.pool())) {
+  const std::size_t size = static_cast<std::size_t>(base.rows()) * kV;
+  for (Block* block : {&x_, &bx_, &cx_, &z_}) block->resize(size);
+}
+
+void ResidualWork::multiply(const double* block) {
+  extended_times(base_.matrix(), block, bx_.data(), product_memory_, base_.pool());
+  extended_times(second_, block, cx_.data(), product_memory_, base_.pool());
+}
+
+std::vector<ResidualPair> ResidualWork::pairs(const std::vector<double>& coordinates, Index count) {
+  std::copy(coordinates.begin(), coordinates.end(), x_.begin());
+  base_.transposed_solve(x_.data());
+  multiply(x_.data());
+  ThreadPool& pool = base_.pool();
+  const ColumnSums energy = dots(pool, x_, bx_), work = dots(pool, x_, cx_);
+  const ColumnSums x_norm = norms(pool, x_), b_norm = norms(pool, bx_), c_norm = norms(pool, cx_);
   ColumnSums theta{};
   for (std::size_t v = 0; v < kV; ++v) theta[v] = energy[v] > 0 ? work[v] / energy[v] : 0;
-  std::vector<double> z(x.size());
-  for_ranges(pool, static_cast<Offset>(z.size() / kV), kBlockRowsAPiece, [&](Offset begin, Offset end) {
+  for_ranges(pool, static_cast<Offset>(z_.size() / kV), kBlockRowsAPiece, [&](Offset begin, Offset end) {
     for (std::size_t i = static_cast<std::size_t>(begin) * kV; i < static_cast<std::size_t>(end) * kV;
          i += kV) {
-      for (std::size_t v = 0; v < kV; ++v) z[i + v] = cx[i + v] - theta[v] * bx[i + v];
+      for (std::size_t v = 0; v < kV; ++v) z_[i + v] = cx_[i + v] - theta[v] * bx_[i + v];
     }
   });
-  const ColumnSums r_norm = norms(pool, z);
-  base.solve(z.data());
-  const ColumnSums z_norm = norms(pool, z), y_norm = norms(pool, coordinates);
+  const ColumnSums r_norm = norms(pool, z_);
+  base_.solve(z_.data());
+  const ColumnSums z_norm = norms(pool, z_), y_norm = norms(pool, coordinates);
   std::vector<ResidualPair> pairs(static_cast<std::size_t>(count));
   for (std::size_t v = 0; v < pairs.size(); ++v) {
     ResidualPair& pair = pairs[v];
@@ -113,24 +125,24 @@ std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix
     // r as computed differs from C x - theta B x by the roundings of both products, of theta times one, of
     // the sum.
     const double rounding = 1.01 * kUnit * (c_norm[v] + 2 * size * b_norm[v] + r_norm[v]) +
-                            (second_size.product_error() + size * base_size.product_error()) * x_norm[v] +
+                            (second_size_.product_error() + size * base_size_.product_error()) * x_norm[v] +
                             0x1p-500;
-    const double shrink = std::sqrt(1 - base.relative());
+    const double shrink = std::sqrt(1 - base_.relative());
     pair.theta = theta[v];
     pair.length = x_norm[v];
-    pair.floor = 1.001 * base.inverse_norm() * (rounding + base.solve_error() * z_norm[v]);
+    pair.floor = 1.001 * base_.inverse_norm() * (rounding + base_.solve_error() * z_norm[v]);
     pair.residual = 1.001 * (z_norm[v] + pair.floor) / shrink;
     pair.norm = y_norm[v];
     // norms() rounds up: take that off again where a lower bound is needed.
-    const double least = shrink * (y_norm[v] / 1.000002 - base.solve_error() * x_norm[v]);
+    const double least = shrink * (y_norm[v] / 1.000002 - base_.solve_error() * x_norm[v]);
     pair.radius = least > 0 ? 1.001 * pair.residual / least + 4 * kUnit * size : INFINITY;
     if (!(pair.radius >= 0) || !std::isfinite(pair.radius)) pair.radius = INFINITY;
   }
   pool.run(static_cast<Offset>(pairs.size()), [&](Offset column, int) {
     const auto v = static_cast<std::size_t>(column);
     pairs[v].coordinates = column_of(coordinates, v);
-    pairs[v].residual_coordinates = column_of(z, v);
-    pairs[v].vector = column_of(x, v);
+    pairs[v].residual_coordinates = column_of(z_, v);
+    pairs[v].vector = column_of(x_, v);
   });
   return pairs;
 }
@@ -160,9 +172,8 @@ std::vector<EigenvalueGroup> disjoint_groups(const DefiniteBase& base,
   return groups;
 }
 
-std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const ShiftedMatrix& second,
-                                                     const std::vector<ResidualPair>& pairs) {
-  const std::size_t k = pairs.size(), rows = static_cast<std::size_t>(base.rows());
+std::vector<std::vector<double>> ResidualWork::refined_coordinates(const std::vector<ResidualPair>& pairs) {
+  const std::size_t k = pairs.size(), rows = static_cast<std::size_t>(base_.rows());
   // Coordinates after one step of inverse iteration: y + M^-1 r / theta; and the products that Rayleigh and
   // Ritz need.
   std::vector<std::vector<double>> y(k), x(k), bx(k), cx(k);
@@ -179,29 +190,26 @@ std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const S
   in_blocks([&](std::size_t first, std::size_t count) {
     const std::vector<double> old = gather(
         [&](std::size_t p) -> const auto& { return pairs[p].vector; }, first, count);
-    std::vector<double> b(old.size()), c(old.size());
-    extended_times(base.matrix(), old.data(), b.data(), base.pool());
-    extended_times(second, old.data(), c.data(), base.pool());
+    multiply(old.data());
     for (std::size_t i = 0; i < rows; ++i) {
-      for (std::size_t v = 0; v < count; ++v) c[i * kV + v] -= pairs[first + v].theta * b[i * kV + v];
+      for (std::size_t v = 0; v < count; ++v) cx_[i * kV + v] -= pairs[first + v].theta * bx_[i * kV + v];
     }
-    base.solve(c.data());
+    base_.solve(cx_.data());
     for (std::size_t v = 0; v < count; ++v) {
       const ResidualPair& pair = pairs[first + v];
       y[first + v].resize(rows);
       for (std::size_t i = 0; i < rows; ++i) {
-        y[first + v][i] = (pair.coordinates[i] + c[i * kV + v] / pair.theta) / pair.norm;
+        y[first + v][i] = (pair.coordinates[i] + cx_[i * kV + v] / pair.theta) / pair.norm;
       }
     }
     std::vector<double> fresh = gather(
         [&](std::size_t p) -> const auto& { return y[p]; }, first, count);
-    base.transposed_solve(fresh.data());
-    extended_times(base.matrix(), fresh.data(), b.data(), base.pool());
-    extended_times(second, fresh.data(), c.data(), base.pool());
+    base_.transposed_solve(fresh.data());
+    multiply(fresh.data());
     for (std::size_t v = 0; v < count; ++v) {
       x[first + v] = column_of(fresh, v);
-      bx[first + v] = column_of(b, v);
-      cx[first + v] = column_of(c, v);
+      bx[first + v] = column_of(bx_, v);
+      cx[first + v] = column_of(cx_, v);
     }
   });
   // Rayleigh and Ritz in the span: energy = V diag(e) V^T, then the work in those coordinates.

@@ -4,6 +4,8 @@
 
 #include <vector>
 
+#include "base/long_vector.hpp"
+#include "numeric/extended_product.hpp"
 #include "spectrum/definite_base.hpp"
 
 namespace stanchion {
@@ -22,17 +24,33 @@ struct ResidualPair {
   std::vector<double> vector;                ///< x, in elimination order, of the scaled matrix
 };
 
-/// Pairs from `coordinates`, a block of approximate eigenvectors of M^-1 C M^-T (the first `count` columns;
-/// the others are not looked at). theta is the Rayleigh quotient. `second`: C. Products with the data are
-/// extended, every rounding is in the radius. Cost: two products and two passes over L.
-std::vector<ResidualPair> residual_pairs(DefiniteBase& base, const ShiftedMatrix& second,
-                                         const std::vector<double>& coordinates, Index count);
+/// B and C of a pencil with what residuals of many pairs need again and again: their sizes, and memory for
+/// eight vectors at a time. `base` and what `second` refers to outlive the object. Cost: a pass over each
+/// matrix; memory: nine blocks of eight vectors.
+class ResidualWork {
+ public:
+  ResidualWork(DefiniteBase& base, const ShiftedMatrix& second);
 
-/// Better coordinates from `pairs`: one step of inverse iteration on the residual, Rayleigh and Ritz among
-/// them; the values of the pairs must be nonzero and the pairs those of the largest values in size. Cost: as
-/// residual_pairs, for every eight.
-std::vector<std::vector<double>> refined_coordinates(DefiniteBase& base, const ShiftedMatrix& second,
-                                                     const std::vector<ResidualPair>& pairs);
+  /// Pairs from `coordinates`, a block of approximate eigenvectors of M^-1 C M^-T (the first `count` columns;
+  /// the others are not looked at). theta is the Rayleigh quotient. Products with the data are extended,
+  /// every rounding is in the radius. Cost: two products and two passes over L.
+  std::vector<ResidualPair> pairs(const std::vector<double>& coordinates, Index count);
+
+  /// Better coordinates from `pairs`: one step of inverse iteration on the residual, Rayleigh and Ritz among
+  /// them; the values of the pairs must be nonzero and the pairs those of the largest values in size. Cost:
+  /// as pairs(), for every eight.
+  std::vector<std::vector<double>> refined_coordinates(const std::vector<ResidualPair>& pairs);
+
+ private:
+  /// bx_ := B block and cx_ := C block.
+  void multiply(const double* block);
+
+  DefiniteBase& base_;
+  const ShiftedMatrix& second_;
+  AbsoluteNorm base_size_, second_size_;
+  Buffer<double> product_memory_;
+  LongVector<double> x_, bx_, cx_, z_;
+};
 
 /// Bound on ||X^T B X - I|| for the vectors `members` of `pairs`, each divided by its norm.
 double gram_defect(const DefiniteBase& base, const std::vector<ResidualPair>& pairs,

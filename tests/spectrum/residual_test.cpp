@@ -27,14 +27,15 @@ std::vector<ResidualPair> pairs_with_noise(const KnownPencil& known, PencilParts
   std::mt19937 random(5);
   std::normal_distribution<double> gauss;
   std::vector<ResidualPair> pairs;
+  const ShiftedMatrix second = parts.second();
+  ResidualWork residuals(base, second);
   for (std::size_t first = 0; first < all.size(); first += kBlockVectors) {
     const std::vector<RitzValue> chosen(
         all.begin() + static_cast<long>(first),
         all.begin() + static_cast<long>(std::min(first + kBlockVectors, all.size())));
     std::vector<double> block = lanczos.vectors(chosen);
     for (double& entry : block) entry += noise * gauss(random);
-    for (ResidualPair& pair :
-         residual_pairs(base, parts.second(), block, static_cast<Index>(chosen.size()))) {
+    for (ResidualPair& pair : residuals.pairs(block, static_cast<Index>(chosen.size()))) {
       pairs.push_back(std::move(pair));
     }
   }
@@ -100,12 +101,14 @@ TEST(ResidualIntervals, RefiningMakesThemTighter) {
   std::vector<ResidualPair> rough = pairs_with_noise(known, parts, base, 1e-6);
   double before = 0, after = 0;
   for (const ResidualPair& pair : rough) before = std::max(before, pair.radius);
-  const auto better = refined_coordinates(base, parts.second(), rough);
+  const ShiftedMatrix second = parts.second();
+  ResidualWork work(base, second);
+  const auto better = work.refined_coordinates(rough);
   ASSERT_EQ(better.size(), rough.size());
   for (const auto& coordinates : better) {
     std::vector<double> block(coordinates.size() * kBlockVectors, 0.0);
     for (std::size_t i = 0; i < coordinates.size(); ++i) block[i * kBlockVectors] = coordinates[i];
-    after = std::max(after, residual_pairs(base, parts.second(), block, 1).front().radius);
+    after = std::max(after, work.pairs(block, 1).front().radius);
   }
   EXPECT_LT(after, before / 100);
 }
@@ -181,7 +184,8 @@ TEST(SharperIntervals, RestOnTheNumberBeingRight) {
   std::vector<double> block(4 * kBlockVectors, 0.0);
   for (std::size_t i = 0; i < 4; ++i)
     block[i * kBlockVectors] = pairs[1].coordinates[i] + pairs[2].coordinates[i];
-  std::vector<ResidualPair> three{pairs[0], residual_pairs(base, parts.second(), block, 1).front(), pairs[3]};
+  const ShiftedMatrix second = parts.second();
+  std::vector<ResidualPair> three{pairs[0], ResidualWork(base, second).pairs(block, 1).front(), pairs[3]};
   auto groups = disjoint_groups(base, three);
   ASSERT_EQ(groups.size(), 3u);
   sharpen(base, three, -HUGE_VAL, HUGE_VAL, groups);
@@ -220,7 +224,7 @@ TEST(ResidualIntervals, CountTheMembersOfASum) {
   std::vector<double> coordinates(kBlockVectors, 0.0);
   coordinates.front() = 1;
   const ShiftedMatrix second{&parts.family, coefficients, &parts.scale, 0};
-  const ResidualPair pair = residual_pairs(**base, second, coordinates, 1).front();
+  const ResidualPair pair = ResidualWork(**base, second).pairs(coordinates, 1).front();
   const double size = 2.0 * kMembers * static_cast<double>(kFactor) * static_cast<double>(kEntry);
   const double error = std::fabs(pair.theta - static_cast<double>(exact));
   EXPECT_GT(error, 100 * 0x1p-106 * size);
