@@ -18,7 +18,7 @@ struct DataColumns {
   Index members;
 };
 
-/// The two loops over a panel of L, for L in either precision; sums are in double.
+/// The loops over a panel of L and over its triangle, for L in either precision; sums are in double.
 template <class Scalar>
 struct PanelKernels {
   /// y_i += sum_(k < columns) l_ik x_k for `rows` rows; columns <= 64. The sum is formed apart and added
@@ -30,6 +30,15 @@ struct PanelKernels {
   /// once.
   void (*transposed_times_block)(const Scalar* lower, Index leading, Index rows, Index columns,
                                  const double* x, double* out);
+
+  /// x := L^-1 x for the unit lower triangle of `columns` columns; no entry takes part in more additions one
+  /// after another than there are columns and two.
+  void (*solve_triangle)(const Scalar* lower, Index leading, Index columns, double* x);
+
+  /// x := L^-T (x - sums) for the same triangle, row k of `sums` being added to before it is taken off; the
+  /// same number of additions.
+  void (*solve_transposed_triangle)(const Scalar* lower, Index leading, Index columns, const double* sums,
+                                    double* x);
 };
 
 struct BlockKernels {

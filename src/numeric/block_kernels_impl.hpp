@@ -100,6 +100,75 @@ void panel_transposed_times_block(const Scalar* lower, Index leading, Index rows
   }
 }
 
+template <class Scalar>
+void solve_triangle(const Scalar* lower, Index leading, Index columns, double* x) {
+  Index k = 0;
+  for (; k + 4 <= columns; k += 4) {
+    const Scalar* l0 = lower + static_cast<long>(k) * leading;
+    const Scalar *l1 = l0 + leading, *l2 = l1 + leading, *l3 = l2 + leading;
+    double* own = x + 8 * static_cast<long>(k);
+    const Lanes n0 = -load(own);
+    const Lanes x1 = add_product(load(own + 8), n0, l0[k + 1]), n1 = -x1;
+    const Lanes x2 = add_product(add_product(load(own + 16), n0, l0[k + 2]), n1, l1[k + 2]), n2 = -x2;
+    const Lanes x3 =
+        add_product(add_product(add_product(load(own + 24), n0, l0[k + 3]), n1, l1[k + 3]), n2, l2[k + 3]);
+    const Lanes n3 = -x3;
+    store(own + 8, x1);
+    store(own + 16, x2);
+    store(own + 24, x3);
+    for (Index i = k + 4; i < columns; ++i) {
+      const Lanes pair = add_product(n0 * l0[i], n1, l1[i]);
+      const Lanes other = add_product(n2 * l2[i], n3, l3[i]);
+      double* to = x + 8 * static_cast<long>(i);
+      store(to, load(to) + (pair + other));
+    }
+  }
+  for (; k < columns; ++k) {
+    const Scalar* l = lower + static_cast<long>(k) * leading;
+    const Lanes n = -load(x + 8 * static_cast<long>(k));
+    for (Index i = k + 1; i < columns; ++i) {
+      double* to = x + 8 * static_cast<long>(i);
+      store(to, add_product(load(to), n, l[i]));
+    }
+  }
+}
+
+template <class Scalar>
+void solve_transposed_triangle(const Scalar* lower, Index leading, Index columns, const double* sums,
+                               double* x) {
+  Index k = columns;
+  for (; k >= 4; k -= 4) {
+    const Scalar* l0 = lower + static_cast<long>(k - 4) * leading;
+    const Scalar *l1 = l0 + leading, *l2 = l1 + leading, *l3 = l2 + leading;
+    const double* sum = sums + 8 * static_cast<long>(k - 4);
+    Lanes s0 = load(sum), s1 = load(sum + 8), s2 = load(sum + 16), s3 = load(sum + 24);
+    for (Index i = k; i < columns; ++i) {
+      const Lanes v = load(x + 8 * static_cast<long>(i));
+      s0 = add_product(s0, v, l0[i]);
+      s1 = add_product(s1, v, l1[i]);
+      s2 = add_product(s2, v, l2[i]);
+      s3 = add_product(s3, v, l3[i]);
+    }
+    double* own = x + 8 * static_cast<long>(k - 4);
+    const Lanes x3 = load(own + 24) - s3;
+    const Lanes x2 = load(own + 16) - add_product(s2, x3, l2[k - 1]);
+    const Lanes x1 = load(own + 8) - add_product(add_product(s1, x3, l1[k - 1]), x2, l1[k - 2]);
+    const Lanes x0 =
+        load(own) - add_product(add_product(add_product(s0, x3, l0[k - 1]), x2, l0[k - 2]), x1, l0[k - 3]);
+    store(own, x0);
+    store(own + 8, x1);
+    store(own + 16, x2);
+    store(own + 24, x3);
+  }
+  while (k-- > 0) {
+    const Scalar* l = lower + static_cast<long>(k) * leading;
+    Lanes s = load(sums + 8 * static_cast<long>(k));
+    for (Index i = k + 1; i < columns; ++i) s = add_product(s, load(x + 8 * static_cast<long>(i)), l[i]);
+    double* own = x + 8 * static_cast<long>(k);
+    store(own, load(own) - s);
+  }
+}
+
 struct Pair {
   double high, low;
 };
@@ -171,8 +240,10 @@ void extended_product(const DataColumns& data, Index begin, Index end, const dou
 
 namespace STANCHION_KERNEL_ISA {
 extern const BlockKernels block_table;
-const BlockKernels block_table{{panel_times_block<double>, panel_transposed_times_block<double>},
-                               {panel_times_block<float>, panel_transposed_times_block<float>},
+const BlockKernels block_table{{panel_times_block<double>, panel_transposed_times_block<double>,
+                                solve_triangle<double>, solve_transposed_triangle<double>},
+                               {panel_times_block<float>, panel_transposed_times_block<float>,
+                                solve_triangle<float>, solve_transposed_triangle<float>},
                                extended_product};
 }  // namespace STANCHION_KERNEL_ISA
 }  // namespace stanchion

@@ -66,14 +66,8 @@ void BlockSolver::forward_front(Index number, double* block, Scratch& scratch, T
         double* own = x + Offset{k} * kV;
         for (Index v = 0; v < kV; ++v) own[v] = right[v] - own[v];
       }
-      for (Index k = begin; k < end; ++k) {
-        const auto* lower = entries + Offset{k} * m;
-        const double* own = x + Offset{k} * kV;
-        for (Index i = k + 1; i < end; ++i) {
-          double* other = x + Offset{i} * kV;
-          for (Index v = 0; v < kV; ++v) other[v] -= lower[i] * own[v];
-        }
-      }
+      block_kernels().panel(entries).solve_triangle(entries + Offset{begin} * m + begin, m, end - begin,
+                                                    x + Offset{begin} * kV);
       for_each_piece(team, (m - end + kSolveRows - 1) / kSolveRows, [&](Offset piece) {
         const Index row = end + static_cast<Index>(piece) * kSolveRows;
         block_kernels().panel(entries).times_block(entries + Offset{begin} * m + row, m,
@@ -111,16 +105,9 @@ void BlockSolver::backward_front(Index number, double* block, Scratch& scratch, 
     const Index tiles = (p + kSolveTile - 1) / kSolveTile;
     for (Index tile = tiles; tile-- > 0;) {
       const Index begin = tile * kSolveTile, end = std::min(begin + kSolveTile, p);
-      for (Index k = end; k-- > begin;) {
-        const auto* lower = entries + Offset{k} * m;
-        double* own = x + Offset{k} * kV;
-        double* sum = sums + Offset{k} * kV;
-        for (Index i = k + 1; i < end; ++i) {
-          const double* other = x + Offset{i} * kV;
-          for (Index v = 0; v < kV; ++v) sum[v] += lower[i] * other[v];
-        }
-        for (Index v = 0; v < kV; ++v) own[v] -= sum[v];
-      }
+      block_kernels().panel(entries).solve_transposed_triangle(entries + Offset{begin} * m + begin, m,
+                                                               end - begin, sums + Offset{begin} * kV,
+                                                               x + Offset{begin} * kV);
       if (begin > 0) add_rows(begin, end, 0, begin);
     }
   });
