@@ -210,10 +210,13 @@ struct ForecastOutcome {
   double seconds = 0;  ///< of one count, as it is likely to be certified
   double seconds_otherwise = 0;  ///< when that does not settle it
   double factorization_seconds = 0;
-  Index factorizations = 0;     ///< of the likely way
-  bool relative_test = false;   ///< it ends with the relative test
-  double flops_per_second = 0;  ///< measured: one thread, in large fronts
-  std::string assumption;       ///< what `seconds` rests on, in words
+  Index factorizations = 0;            ///< of the likely way
+  bool relative_test = false;          ///< it ends with the relative test
+  double flops_per_second = 0;         ///< measured: one thread, in large fronts
+  std::string assumption;              ///< what `seconds` rests on, in words
+  int side_by_side = 1;                ///< shifts of a sweep that may run at a time
+  Offset peak_bytes_side_by_side = 0;  ///< all of these, as they are likely to be certified
+  double seconds_side_by_side = 0;     ///< of one shift among them, the matrix not being definite there
 };
 
 struct InputRecord {

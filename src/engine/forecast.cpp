@@ -4,6 +4,7 @@
 
 #include "base/clock.hpp"
 #include "diagnose/diagnosis.hpp"
+#include "engine/host.hpp"
 #include "engine/host_rates.hpp"
 #include "engine/prepared_pencil.hpp"
 #include "extended/factorize.hpp"
@@ -31,8 +32,10 @@ void forecast_time(const PreparedPencil& pencil, const Request& request, bool de
   const LikelyWork work = pencil.likely_work(definite);
   const HostRates rates = measure_host(work.single);
   const bool extended = request.precision == Precision::kExtended;
-  const double each = extended ? extended_seconds_forecast(analysis) : factorization_seconds(analysis, rates);
-  const double test = relative_test_seconds(analysis, pencil.entries(), rates);
+  const int workers = analysis.schedule.workers;
+  const double each =
+      extended ? extended_seconds_forecast(analysis) : factorization_seconds(analysis, rates, workers);
+  const double test = relative_test_seconds(analysis, pencil.entries(), rates, workers);
   forecast.factorization_seconds = each;
   forecast.factorizations = work.factorizations;
   forecast.relative_test = work.relative;
@@ -42,6 +45,24 @@ void forecast_time(const PreparedPencil& pencil, const Request& request, bool de
   forecast.assumption =
       in_words(work.factorizations, each, work.relative) +
       (definite ? ", for the matrix is expected to be definite" : ", for the matrix may be indefinite");
+}
+
+/// Shifts of a sweep side by side, where the matrix may be indefinite, whatever it is at 0.
+void forecast_sweep(const PreparedPencil& pencil, const Request& request, ForecastOutcome& forecast) {
+  const Analysis& analysis = pencil.analysis();
+  const int threads = analysis.schedule.workers;
+  Offset room = pencil.free_bytes();
+  if (request.memory_cap_bytes) room = std::min(room, *request.memory_cap_bytes - resident_bytes());
+  forecast.side_by_side = pencil.side_by_side(threads, room);
+  const int each = std::max(1, threads / forecast.side_by_side);
+  forecast.peak_bytes_side_by_side = pencil.bytes_side_by_side(forecast.side_by_side, each);
+  const LikelyWork work = pencil.likely_work(false);
+  const HostRates rates = measure_host(work.single);
+  const double seconds = request.precision == Precision::kExtended
+                             ? extended_seconds_forecast(analysis)
+                             : factorization_seconds(analysis, rates, each);
+  const double test = work.relative ? relative_test_seconds(analysis, pencil.entries(), rates, each) : 0;
+  forecast.seconds_side_by_side = (work.factorizations * seconds + test) / forecast.side_by_side;
 }
 
 }  // namespace
@@ -72,6 +93,7 @@ Result<Outcome> run_forecast(const Request& request, const RunContext& context) 
   forecast.peak_bytes_locate =
       outcome.memory.forecast + with_allowance(locating) - with_allowance(structure.peak_bytes_count);
   forecast_time(*pencil, request, definite, forecast);
+  forecast_sweep(*pencil, request, forecast);
   outcome.forecast = forecast;
   finish_outcome(outcome, watch.seconds());
   return outcome;

@@ -150,20 +150,19 @@ HostRates measure_host(bool single) {
   return single ? measure<float>() : measure<double>();
 }
 
-double factorization_seconds(const Analysis& analysis, const HostRates& rates) {
+double factorization_seconds(const Analysis& analysis, const HostRates& rates, int workers) {
   const AssemblyTree& tree = analysis.tree;
   double all = 0, shared = 0;
   for (Index f = 0; f < tree.fronts; ++f) all += seconds_of_front(tree, f, rates);
   for (const Index f : analysis.schedule.shared_fronts) shared += seconds_of_front(tree, f, rates);
-  const double workers = std::max(1, analysis.schedule.workers);
-  const double touching = kSecondsPerByteTouched * static_cast<double>(analysis.forecast.peak_bytes_count);
+  const double touching = kSecondsPerByteTouched * static_cast<double>(peak_bytes(analysis, workers).count);
   return touching + (all - shared) / workers + shared / std::max(1.0, kSharedShare * workers);
 }
 
-double relative_test_seconds(const Analysis& analysis, Offset entries, const HostRates& rates) {
+double relative_test_seconds(const Analysis& analysis, Offset entries, const HostRates& rates, int workers) {
   const double tested = static_cast<double>(analysis.forecast.stored_factor_entries) +
                         kTestedEntriesPerDatum * static_cast<double>(entries);
-  return rates.seconds_per_tested_entry * tested / std::max(1, analysis.schedule.workers);
+  return rates.seconds_per_tested_entry * tested / workers;
 }
 
 }  // namespace stanchion

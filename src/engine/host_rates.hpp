@@ -26,10 +26,10 @@ constexpr double kTestedEntriesPerDatum = 6;
 /// to its relative test, in double or in single precision. Throws std::bad_alloc.
 HostRates measure_host(bool single = false);
 
-/// One factorization, in the precision that was measured, by the workers of `analysis`.
-double factorization_seconds(const Analysis& analysis, const HostRates& rates);
+/// One factorization, in the precision that was measured, by `workers`.
+double factorization_seconds(const Analysis& analysis, const HostRates& rates, int workers);
 
 /// The relative test on a kept factor; `entries` of the matrix.
-double relative_test_seconds(const Analysis& analysis, Offset entries, const HostRates& rates);
+double relative_test_seconds(const Analysis& analysis, Offset entries, const HostRates& rates, int workers);
 
 }  // namespace stanchion

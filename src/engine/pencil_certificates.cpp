@@ -24,13 +24,14 @@ void book(const CertifiedInertia& certified, Outcome& outcome) {
 
 Result<CertifiedInertia> PreparedPencil::run(const ShiftedMatrix& matrix, const OffsetOptions& options,
                                              ThreadPool& pool, Outcome& outcome) {
-  auto found = run_on(matrix, {options, nullptr, seed_, bytes_for_factor()}, *risk_, pool, outcome);
+  auto found = run_on(matrix, {options, nullptr, seed_, bytes_for_factor()}, *risk_, 1, pool, outcome);
   if (found.ok() && found->single_hopeless && single_ == SingleUse::kWhereFaster) single_ = SingleUse::kNever;
   return found;
 }
 
 Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, const CertifyOptions& options,
-                                                RiskBudget& risk, ThreadPool& pool, Outcome& outcome) const {
+                                                RiskBudget& risk, int share, ThreadPool& pool,
+                                                Outcome& outcome) const {
   CertifyOptions certify_options = options;
   certify_options.risk = extended_ ? nullptr : &risk;
   certify_options.offsets.extended = extended_;
@@ -50,14 +51,14 @@ Result<CertifiedInertia> PreparedPencil::run_on(const ShiftedMatrix& matrix, con
   }
   outcome.timings.certify += certified->certify_seconds;
   if (certified->certify_seconds > 0) {  // a factor was kept
-    const StructureForecast& forecast = analysis_.forecast;
+    const PeakBytes peak = peak_bytes(analysis_, pool.size());
     // Where memory is short L alone may be in single precision, and the fronts in double.
-    const bool single = certified->certificate.precision == "single" &&
-                        (certify_options.single == SingleUse::kOnly ||
-                         forecast.peak_bytes_solve <= certify_options.most_factor_bytes);
-    outcome.memory.forecast = std::max(
-        outcome.memory.forecast,
-        resident_before_ + with_allowance(single ? forecast.peak_bytes_single : forecast.peak_bytes_solve));
+    const bool single =
+        certified->certificate.precision == "single" &&
+        (certify_options.single == SingleUse::kOnly || peak.solve <= certify_options.most_factor_bytes);
+    outcome.memory.forecast =
+        std::max(outcome.memory.forecast,
+                 resident_before_ + share * with_allowance(single ? peak.single : peak.solve));
   }
   book(*certified, outcome);
   return certified;
@@ -76,7 +77,7 @@ Result<CertifiedInertia> PreparedPencil::certify_apart(double factor, bool defin
   options.most_factor_bytes = bytes_for_factor() / share;
   options.seed = CounterRandom::combine(seed_, static_cast<std::uint64_t>(number));
   RiskBudget risk(event_share(risk_->total(), number));
-  return run_on(combination(factor), options, risk, pool, scratch);
+  return run_on(combination(factor), options, risk, share, pool, scratch);
 }
 
 void PreparedPencil::merge(const Outcome& scratch, Outcome& outcome) {

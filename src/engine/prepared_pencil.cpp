@@ -288,19 +288,24 @@ TripletMatrix PreparedPencil::formed(double factor, double offset) const {
   return triplets;
 }
 
-/// Of one count among others: with its factor kept, where the relative test may be used.
-Offset PreparedPencil::bytes_of_one_count() const {
-  return extended_ ? counting_bytes() : std::max(analysis_.forecast.peak_bytes_solve, counting_bytes());
+/// Of one count among others, by `threads`: the most it may take, or what it is likely to.
+Offset PreparedPencil::bytes_of_one_count(int threads, bool likely) const {
+  if (extended_) return counting_bytes();
+  const PeakBytes peak = peak_bytes(analysis_, threads);
+  if (single_ == SingleUse::kOnly) return peak.single;
+  if (!likely) return peak.solve;
+  const LikelyWork work = likely_work(false);
+  return work.single ? peak.single : work.relative ? peak.solve : peak.count;
 }
 
-int PreparedPencil::side_by_side(int most) const {
-  const Offset each = with_allowance(bytes_of_one_count()), room = bytes_for_factor();
-  return static_cast<int>(std::clamp<Offset>(room / each, 1, std::max(most, 1)));
+int PreparedPencil::side_by_side(int most, Offset room) const {
+  int many = std::max(most, 1);
+  while (many > 1 && many * with_allowance(bytes_of_one_count(most / many, false)) > room) --many;
+  return many;
 }
 
-void PreparedPencil::forecast_side_by_side(int many, Outcome& outcome) const {
-  const Offset together = resident_bytes() + many * with_allowance(bytes_of_one_count());
-  outcome.memory.forecast = std::max(outcome.memory.forecast, together);
+Offset PreparedPencil::bytes_side_by_side(int many, int threads) const {
+  return resident_bytes() + many * with_allowance(bytes_of_one_count(threads, true));
 }
 
 Result<std::optional<DefiniteBase>> PreparedPencil::definite_base(double factor, double smallest_eigenvalue,

@@ -61,11 +61,12 @@ class PreparedPencil {
   /// Books what `scratch` holds of time, work, risk and warnings into `outcome`.
   void merge(const Outcome& scratch, Outcome& outcome);
 
-  /// How many factorizations may run side by side, each with the forecast memory, at most `most`.
-  int side_by_side(int most) const;
+  /// How many counts may run side by side on `most` threads, each with the most memory it may take, in `room`
+  /// bytes.
+  int side_by_side(int most, Offset room) const;
 
-  /// Books into `outcome` what `many` of them may take together.
-  void forecast_side_by_side(int many, Outcome& outcome) const;
+  /// What `many` of them, each by `threads`, are likely to take together, with all that is in use.
+  Offset bytes_side_by_side(int many, int threads) const;
 
   /// K with what is added plus `factor` times the second matrix, definite, with its factor kept; nothing when
   /// it is not definite. `smallest_eigenvalue`: a proved bound of it, or 0. Charged to the document where a
@@ -136,10 +137,10 @@ class PreparedPencil {
   Result<CertifiedInertia> run(const ShiftedMatrix& matrix, const OffsetOptions& options, ThreadPool& pool,
                                Outcome& outcome);
   Result<CertifiedInertia> run_on(const ShiftedMatrix& matrix, const CertifyOptions& options,
-                                  RiskBudget& risk, ThreadPool& pool, Outcome& outcome) const;
+                                  RiskBudget& risk, int share, ThreadPool& pool, Outcome& outcome) const;
   Status cannot_keep_factor(Offset needed, const Outcome& outcome) const;
   Offset counting_bytes() const;
-  Offset bytes_of_one_count() const;
+  Offset bytes_of_one_count(int threads, bool likely) const;
   Offset bytes_for_factor() const;
 
   Analysis analysis_;

@@ -19,7 +19,7 @@ struct CountRunner::Task {
 };
 
 Status CountRunner::open() {
-  lanes_ = counter_.pencil().side_by_side(pool_.size());
+  lanes_ = counter_.pencil().side_by_side(pool_.size(), counter_.pencil().free_bytes());
   if (context_.journal == nullptr) return {};
   auto entries = context_.journal->open(outcome_);
   if (!entries.ok()) return entries.status();
@@ -76,12 +76,14 @@ Status CountRunner::work_all(std::vector<Task>& tasks) {
     lane(1, pool_);
     return status;
   }
-  counter_.pencil().forecast_side_by_side(lanes, outcome_);
+  const int threads_each = std::max(1, pool_.size() / lanes);
+  outcome_.memory.forecast =
+      std::max(outcome_.memory.forecast, counter_.pencil().bytes_side_by_side(lanes, threads_each));
   std::vector<std::thread> threads;
   threads.reserve(static_cast<std::size_t>(lanes));
   const auto lane_of_its_own = [&] {
     try {
-      ThreadPool own(std::max(1, pool_.size() / lanes));
+      ThreadPool own(threads_each);
       lane(lanes, own);
     } catch (const std::exception&) {  // std::bad_alloc, or no thread to be had
       const std::lock_guard lock(mutex);

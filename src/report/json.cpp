@@ -26,7 +26,10 @@ Json json_of(const ForecastOutcome& forecast) {
           {"factorizations", forecast.factorizations},
           {"relative_test", forecast.relative_test},
           {"flops_per_second", json_of(forecast.flops_per_second)},
-          {"assumption", forecast.assumption}};
+          {"assumption", forecast.assumption},
+          {"side_by_side", forecast.side_by_side},
+          {"peak_bytes_side_by_side", forecast.peak_bytes_side_by_side},
+          {"seconds_side_by_side", json_of(forecast.seconds_side_by_side)}};
 }
 
 /// The vector itself unless a file holds it.

@@ -22,6 +22,12 @@ void write_forecast(Page& page, const Outcome& outcome) {
            fmt::format("{} to count (the factor is thrown away), {} to keep the factor, {} to locate",
                        bytes_in_words(forecast.peak_bytes_count), bytes_in_words(forecast.peak_bytes_solve),
                        bytes_in_words(forecast.peak_bytes_locate)));
+  const std::string each = forecast.seconds_side_by_side < 0.001
+                               ? std::string("less than 1 ms")
+                               : "about " + duration_in_words(forecast.seconds_side_by_side);
+  page.row("sweep", fmt::format("{} at a time in {}, {} a shift that is not definite",
+                                counted(forecast.side_by_side, "shift"),
+                                bytes_in_words(forecast.peak_bytes_side_by_side), each));
   page.row("fronts", fmt::format("{}, the largest with {} rows", grouped(outcome.work.supernodes),
                                  grouped(outcome.work.largest_front)));
 }

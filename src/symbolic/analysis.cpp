@@ -38,25 +38,29 @@ Result<Analysis> analyse_or_throw(const OrderingInput& input, int workers) {
     forecast.stored_factor_entries += pivots * order;
     forecast.largest_front = std::max(forecast.largest_front, analysis.tree.order(f));
   }
-  constexpr Offset kDouble = sizeof(double);
-  // The vector that detects faults: its sign, its product and the product's bound, a row.
-  constexpr Offset kFaultProbe = 1 + 2 * kDouble;
-  forecast.peak_bytes_count =
-      analysis.schedule.peak_doubles * kDouble + Offset{analysis.tree.rows} * kFaultProbe;
-  // A kept factor serves blocks of eight vectors: the relative test holds ten of them and a few sums a row.
-  constexpr Offset kTest = (10 * 8 + 4) * kDouble;
-  forecast.peak_bytes_solve = std::max(forecast.peak_bytes_count, Offset{analysis.tree.rows} * kTest) +
-                              forecast.stored_factor_entries * kDouble;
-  constexpr Offset kSingle = sizeof(float);
-  const Offset single_fronts =
-      analysis.schedule.peak_doubles * kSingle + Offset{analysis.tree.rows} * kFaultProbe;
-  forecast.peak_bytes_single =
-      std::max(single_fronts, Offset{analysis.tree.rows} * kTest) + forecast.stored_factor_entries * kSingle;
+  const PeakBytes peak = peak_bytes(analysis, workers);
+  forecast.peak_bytes_count = peak.count;
+  forecast.peak_bytes_solve = peak.solve;
+  forecast.peak_bytes_single = peak.single;
   analysis.analyse_seconds = watch.seconds();
   return analysis;
 }
 
 }  // namespace
+
+PeakBytes peak_bytes(const Analysis& analysis, int workers) {
+  constexpr Offset kDouble = sizeof(double), kSingle = sizeof(float);
+  // The vector that detects faults: its sign, its product and the product's bound, a row.
+  constexpr Offset kFaultProbe = 1 + 2 * kDouble;
+  // A kept factor serves blocks of eight vectors: the relative test holds ten of them and a few sums a row.
+  constexpr Offset kTest = (10 * 8 + 4) * kDouble;
+  const Offset doubles = peak_doubles_of(analysis.tree, analysis.schedule, workers),
+               rows = analysis.tree.rows, kept = analysis.forecast.stored_factor_entries;
+  const Offset fronts = doubles * kDouble + rows * kFaultProbe;
+  const Offset single_fronts = doubles * kSingle + rows * kFaultProbe;
+  return {fronts, std::max(fronts, rows * kTest) + kept * kDouble,
+          std::max(single_fronts, rows * kTest) + kept * kSingle};
+}
 
 Result<Analysis> analyse(const OrderingInput& input, int workers) {
   try {

@@ -28,6 +28,13 @@ struct Analysis {
   bool known_order = false;  ///< the elimination order was found before, see OrderingInput
 };
 
+/// What the numeric phase holds at most, for another number of workers than the analysis was made for, at
+/// most as many.
+struct PeakBytes {
+  Offset count = 0, solve = 0, single = 0;  ///< see StructureForecast
+};
+PeakBytes peak_bytes(const Analysis& analysis, int workers);
+
 /// Orders, counts, amalgamates and schedules. Errors: those of order_equations. Reproducible; the tree does
 /// not depend on `workers`, only the schedule does.
 Result<Analysis> analyse(const OrderingInput& input, int workers);

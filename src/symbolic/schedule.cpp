@@ -90,11 +90,11 @@ Waiting waiting_for_fronts(const AssemblyTree& tree, const Schedule& schedule) {
   return waiting;
 }
 
-/// The largest stacks of subtrees, one a worker, with their scratch.
-Offset worker_doubles(const Schedule& schedule) {
+/// The largest stacks of subtrees, one for each of `workers`, with their scratch.
+Offset worker_doubles(const Schedule& schedule, int workers) {
   std::vector<Offset> arenas;
   for (const Subtree& subtree : schedule.subtrees) arenas.push_back(subtree.arena_doubles);
-  const auto busy = std::min<std::size_t>(static_cast<std::size_t>(schedule.workers), arenas.size());
+  const auto busy = std::min<std::size_t>(static_cast<std::size_t>(workers), arenas.size());
   std::partial_sort(arenas.begin(), arenas.begin() + static_cast<std::ptrdiff_t>(busy), arenas.end(),
                     std::greater<>());
   Offset total = 0;
@@ -106,16 +106,16 @@ Offset worker_doubles(const Schedule& schedule) {
 /// the shared stack, which keeps its highest mark of a wave until the wave ends. `keep`: all stacks stay as
 /// they are to the end.
 Offset peak_of_waves(const AssemblyTree& tree, const Schedule& schedule, const std::vector<Wave>& waves,
-                     bool keep) {
+                     int workers, bool keep) {
   const Waiting waiting = waiting_for_fronts(tree, schedule);
-  const Offset workers = worker_doubles(schedule), kept = keep ? workers : 0;
+  const Offset stacks = worker_doubles(schedule, workers), kept = keep ? stacks : 0;
   Offset results = 0, top = 0, touched = 0, peak = 0;
   for (const Wave& wave : waves) {
     for (std::size_t k = wave.first_subtree; k < wave.end_subtree; ++k) {
       results += schedule.subtrees[k].result_doubles;
     }
     if (!keep) touched = top;
-    peak = std::max(peak, touched + results + workers);
+    peak = std::max(peak, touched + results + stacks);
     for (std::size_t k = wave.first_shared; k < wave.end_shared; ++k) {
       const Index f = schedule.shared_fronts[k];
       touched = std::max(touched, top + front_doubles(tree, f));
@@ -153,22 +153,27 @@ constexpr double kWorthSaving = 0.85, kWorthKeeping = 1.25;
 
 void choose_waves(const AssemblyTree& tree, Schedule& schedule) {
   schedule.waves = {{0, schedule.subtrees.size(), 0, schedule.shared_fronts.size()}};
-  schedule.peak_doubles = peak_of_waves(tree, schedule, schedule.waves, false);
+  schedule.peak_doubles = peak_of_waves(tree, schedule, schedule.waves, schedule.workers, false);
   if (!schedule.shared_fronts.empty() && schedule.peak_doubles >= kSmallPeak) {
     std::vector<Wave> many = processing_waves(schedule);
-    const Offset peak = peak_of_waves(tree, schedule, many, false);
+    const Offset peak = peak_of_waves(tree, schedule, many, schedule.workers, false);
     if (static_cast<double>(peak) <= kWorthSaving * static_cast<double>(schedule.peak_doubles)) {
       schedule.waves = std::move(many);
       schedule.peak_doubles = peak;
     }
   }
-  const Offset kept = peak_of_waves(tree, schedule, schedule.waves, true);
+  const Offset kept = peak_of_waves(tree, schedule, schedule.waves, schedule.workers, true);
   schedule.keep_stacks = kept < kSmallPeak || static_cast<double>(kept) <=
                                                   kWorthKeeping * static_cast<double>(schedule.peak_doubles);
   if (schedule.keep_stacks) schedule.peak_doubles = kept;
 }
 
 }  // namespace
+
+Offset peak_doubles_of(const AssemblyTree& tree, const Schedule& schedule, int workers) {
+  return peak_of_waves(tree, schedule, schedule.waves, std::min(workers, schedule.workers),
+                       schedule.keep_stacks);
+}
 
 double front_flops(Index order, Index pivots) {
   const double m = order, rest = order - pivots;

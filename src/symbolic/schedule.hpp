@@ -42,6 +42,10 @@ struct Schedule {
 /// memory. The arithmetic of every front is the same wherever it runs. Cost: linear in the fronts.
 Schedule make_schedule(const AssemblyTree& tree, int workers);
 
+/// Bound on everything alive at once, in doubles, when `workers` run the schedule, at most those it was made
+/// for: fewer stacks of subtrees.
+Offset peak_doubles_of(const AssemblyTree& tree, const Schedule& schedule, int workers);
+
 /// Operations of one front with `pivots` of `order` rows eliminated.
 double front_flops(Index order, Index pivots);
 

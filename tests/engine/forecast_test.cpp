@@ -1,4 +1,5 @@
 // Forecasts of time: measured rates and the work that a count will take.
+#include "engine/host.hpp"
 #include "engine/host_rates.hpp"
 #include "engine/model_files.hpp"
 #include "support/factored.hpp"
@@ -23,10 +24,11 @@ TEST(HostRates, LargerFrontsTakeLongerAndRunFaster) {
 TEST(HostRates, MoreWorkTakesLonger) {
   const HostRates rates = measure_host();
   const auto small = prepare(laplacian(8, 8, 8)), large = prepare(laplacian(20, 20, 20));
-  EXPECT_GT(factorization_seconds(small.analysis, rates), 0);
-  EXPECT_GT(factorization_seconds(large.analysis, rates), 5 * factorization_seconds(small.analysis, rates));
-  EXPECT_GT(relative_test_seconds(large.analysis, large.family.entries(), rates),
-            5 * relative_test_seconds(small.analysis, small.family.entries(), rates));
+  EXPECT_GT(factorization_seconds(small.analysis, rates, 1), 0);
+  EXPECT_GT(factorization_seconds(large.analysis, rates, 1),
+            5 * factorization_seconds(small.analysis, rates, 1));
+  EXPECT_GT(relative_test_seconds(large.analysis, large.family.entries(), rates, 1),
+            5 * relative_test_seconds(small.analysis, small.family.entries(), rates, 1));
 }
 
 TEST(Forecast, TheSecondsAreThoseOfTheLikelyWork) {
@@ -46,6 +48,28 @@ TEST(Forecast, TheSecondsAreThoseOfTheLikelyWork) {
   EXPECT_EQ(shifted.factorizations, 2);
   EXPECT_NE(shifted.assumption.find("may be indefinite"), std::string::npos);
   EXPECT_DOUBLE_EQ(shifted.seconds, 2 * shifted.factorization_seconds);
+}
+
+TEST(Forecast, AsManyShiftsOfASweepRunAtATimeAsTheMemoryHolds) {
+  ModelFiles files;
+  Request request;
+  request.input.stiffness = files.matrix("K.mtx", laplacian(24, 24, 24));
+  request.threads = 3;
+  const ForecastOutcome uncapped = *answer(run_forecast(request, {})).forecast;
+  EXPECT_EQ(uncapped.side_by_side, 3);
+  EXPECT_GT(uncapped.seconds_side_by_side, 0);
+  EXPECT_GT(uncapped.peak_bytes_side_by_side, uncapped.peak_bytes_count);
+  int before = 0;
+  for (int factors = 0; factors <= 4; ++factors) {
+    request.memory_cap_bytes = resident_bytes() + factors * uncapped.peak_bytes_solve;
+    const int many = answer(run_forecast(request, {})).forecast->side_by_side;
+    EXPECT_GE(many, std::max(before, 1));
+    if (factors == 0) {
+      EXPECT_EQ(many, 1);
+    }
+    before = many;
+  }
+  EXPECT_EQ(before, 3);
 }
 
 }  // namespace

@@ -220,6 +220,18 @@ TEST_F(Published, PlatesUnderCompressionForSeveralAspects) {
   }
 }
 
+/// Equal compression both ways: closed forms for three aspects, from 2 down towards 1.
+TEST_F(Published, PlatesUnderEqualCompressionBothWaysForSeveralAspects) {
+  const auto& biaxial = published()["closed_form"]["plate_SSSS_biaxial_k"];
+  for (const double aspect : {1.0, 2.0, 3.0}) {
+    SCOPED_TRACE(testing::Message() << "aspect " << aspect);
+    const auto& exact = biaxial[std::to_string(static_cast<int>(aspect)) + ",beta=1"];
+    const double coarse = plate_values(PlateLoad::kBiaxial, PlateEdges::kSimple, aspect, 2000, false, 1)[0];
+    const double fine = plate_values(PlateLoad::kBiaxial, PlateEdges::kSimple, aspect, 8000, false, 1)[0];
+    expect_convergence(coarse, fine, real(exact[0]), 2.5, 0.005);
+  }
+}
+
 TEST_F(Published, PlatesUnderBiaxialAndShearLoadAndClamped) {
   const auto& ritz = published()["plate_ritz_converged"]["N=12"];
   const std::tuple<const char*, PlateLoad, PlateEdges, double> cases[] = {
