@@ -11,6 +11,7 @@
 #include "report/junit.hpp"
 #include "report/markup.hpp"
 #include "report/model_view.hpp"
+#include "report/numbers.hpp"
 #include "report/samples.hpp"
 #include "report/text.hpp"
 #include "report/vtu.hpp"
@@ -118,6 +119,21 @@ TEST(Csv, FieldsAreQuotedAsRfc4180Asks) {
   Outcome outcome = samples::located();
   outcome.located->directions[0].explanation = "one, \"two\"\nthree";
   EXPECT_NE(to_csv(outcome).find("\"one, \"\"two\"\"\nthree\""), std::string::npos);
+}
+
+TEST(Csv, ACountThatIsKnownAsARangeHasBothEnds) {
+  const Outcome outcome = samples::counted_in_part();
+  const std::string table = to_csv(outcome);
+  bool open = false;
+  for (const ShiftCount& count : outcome.count->counts) {
+    const auto [least, most] = count.below_range;
+    open = open || least < most;
+    const std::string item = "counts," + exact(count.shift);
+    EXPECT_NE(table.find(item + ",least," + std::to_string(least) + "\n"), std::string::npos) << table;
+    EXPECT_NE(table.find(item + ",most," + std::to_string(most) + "\n"), std::string::npos) << table;
+    EXPECT_EQ(table.find(item + ",below,") != std::string::npos, count.below.has_value()) << table;
+  }
+  EXPECT_TRUE(open);
 }
 
 TEST(Junit, AnswersGoodNotGoodAndOpenDiffer) {
