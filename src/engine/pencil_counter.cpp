@@ -4,6 +4,8 @@
 #include <cmath>
 #include <cstdio>
 
+#include "engine/mass_facts.hpp"
+
 namespace stanchion {
 namespace {
 
@@ -11,33 +13,6 @@ std::string number_text(double value) {
   char text[32];
   std::snprintf(text, sizeof(text), "%.10g", value);
   return text;
-}
-
-/// Rows where M is entirely absent, when M is diagonal; nothing when M has off-diagonal entries.
-struct MassFacts {
-  bool diagonal = true;
-  bool non_negative = true;  ///< of the diagonal
-  std::vector<Index> massless;
-};
-
-MassFacts inspect_mass(const SymmetricMatrix& mass) {
-  MassFacts facts;
-  std::vector<char> present(static_cast<std::size_t>(mass.rows), 0);
-  for (Index j = 0; j < mass.rows; ++j) {
-    for (Offset k = mass.column_start[j]; k < mass.column_start[Offset{j} + 1]; ++k) {
-      if (mass.value[k] == 0) continue;
-      present[static_cast<std::size_t>(j)] = present[static_cast<std::size_t>(mass.row[k])] = 1;
-      if (mass.row[k] != j) {
-        facts.diagonal = false;
-      } else if (mass.value[k] < 0) {
-        facts.non_negative = false;
-      }
-    }
-  }
-  for (Index i = 0; i < mass.rows; ++i) {
-    if (!present[static_cast<std::size_t>(i)]) facts.massless.push_back(i);
-  }
-  return facts;
 }
 
 /// The rows that are not in the ascending list `rows`.
@@ -83,7 +58,8 @@ Certificate weaker(const Certificate& one, const Certificate& other) {
   return both;
 }
 
-std::string at_eigenvalue(const ShiftCount& count, Index many) {
+/// `always`: K and G have null vectors in common, and no shift is away from those.
+std::string at_eigenvalue(const ShiftCount& count, Index many, bool always) {
   std::string text = "at shift " + number_text(count.shift) + " the count lies between " +
                      std::to_string(count.below_range.first) + " and " +
                      std::to_string(count.below_range.second);
@@ -94,7 +70,11 @@ std::string at_eigenvalue(const ShiftCount& count, Index many) {
   } else {
     text += ": an eigenvalue is too close to this shift to tell";
   }
-  return text + ". Remedy: move the shift a little";
+  return text + ". Remedy: " +
+         (always ? "support the model, or strike the directions without stiffness out with --fix; they are "
+                   "there at "
+                   "every shift"
+                 : "move the shift a little");
 }
 
 }  // namespace
@@ -318,7 +298,8 @@ Status PencilCounter::look_for_common_null_vectors() {
     if (!found.ok()) return found.status();
     common = std::min(common, found->certificate.level == Level::kNone ? Index{0} : found->inertia.zero);
   }
-  if (common == 0) return {};
+  common_null_ = common > 0;
+  if (!common_null_) return {};
   const std::string reservation =
       std::to_string(common) + (common == 1 ? " direction is" : " directions are") +
       " zero in K and in G alike (at the resolution): K + f G is singular at every f, so that no critical "
@@ -439,7 +420,7 @@ ShiftCount PencilCounter::count_from(double shift, const CertifiedInertia& found
     }
   } else {
     count.holds_outside = band(shift, found.certificate);
-    warnings.push_back({"shift-at-eigenvalue", at_eigenvalue(count, inertia.zero), place});
+    warnings.push_back({"shift-at-eigenvalue", at_eigenvalue(count, inertia.zero, common_null_), place});
   }
   return count;
 }

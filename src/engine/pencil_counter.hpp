@@ -120,6 +120,7 @@ class PencilCounter {
       0;               ///< S K S is at least this, when certified definite; kAbove: S (K - origin M) S
   double origin_ = 0;  ///< kAbove: values below it are not counted
   Index negative_on_massless_ = 0;  ///< or taken off for the multipliers
+  bool common_null_ = false;        ///< K and G have null vectors in common
   Index multipliers_ = 0;           ///< 0: none, or they do not border K alone
   Certificate base_;
   std::optional<CertifiedInertia> stiffness_;

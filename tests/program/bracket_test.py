@@ -170,6 +170,10 @@ class BracketTest(ProgramTest):
         document = self.bracket(3, path, "--geometric", geometric, "--below", 2.5)
         self.assertEqual([warning["code"] for warning in document["warnings"]].count("common-null-vectors"), 1)
         self.assertIn("singular at every f, so that no critical factor is defined", document["in_words"][2])
+        (remedy,) = {warning["message"].rsplit("Remedy: ", 1)[1] for warning in document["warnings"]
+                     if warning["code"] == "shift-at-eigenvalue"}
+        self.assertIn("at every shift", remedy)
+        self.assertNotIn("move the shift", remedy)
 
     def test_frequencies_of_a_free_body(self):
         path = self.matrix("F.mtx", ROWS, chain(ROWS, held=0))
