@@ -42,7 +42,6 @@ class OffsetScheme {
       : analysis_(analysis), matrix_(matrix), options_(options), pool_(pool), rows_(analysis.tree.rows) {}
 
   Result<CertifiedInertia> run() {
-    const double norm = infinity_norm(matrix_, &pool_);
     Certificate& certificate = found_.certificate;
     certificate.method = "offsets";
     certificate.precision = options_.extended ? "extended" : "double";
@@ -50,8 +49,8 @@ class OffsetScheme {
       certificate.level = Level::kProved;
       return found_;
     }
-    deep_ = !options_.resolution && !options_.extended && is_deep(norm);
-    double offset = options_.resolution.value_or(std::max(norm, 0x1p-500) * guess(options_.definite_first));
+    norm_ = std::max(infinity_norm(matrix_, &pool_), 0x1p-500);
+    double offset = options_.resolution ? *options_.resolution : norm_ * guess(options_.definite_first);
     if (!options_.resolution) offset = std::max(offset, kMargin * options_.data_error);
     if (options_.definite_first) {
       auto settled = try_definite(offset);
@@ -61,7 +60,7 @@ class OffsetScheme {
         give_up("the attempt without pivoting did not show the matrix definite");
         return found_;
       }
-      if (!options_.resolution) offset = std::max(offset, std::max(norm, 0x1p-500) * guess(false));
+      if (!options_.resolution) offset = std::max(offset, norm_ * guess(false));
     }
     return options_.all_positive_but ? positive_side(offset) : both_offsets(offset);
   }
@@ -74,19 +73,23 @@ class OffsetScheme {
   };
 
   /// True when what the shift adds is no small part of the matrix.
-  bool is_deep(double norm) const {
+  bool is_deep() const {
     if (matrix_.coefficients.size() < 2 || matrix_.coefficients.back() == 0) return false;
     ShiftedMatrix added = matrix_;
     added.coefficients.front() = 0;
-    return infinity_norm(added, &pool_) >= kDeepShare * norm;
+    return infinity_norm(added, &pool_) >= kDeepShare * norm_;
   }
 
-  double guess(bool definite) const {
+  /// Of c over the norm; for general matrices it settles, too, whether the shift lies amid the spectrum.
+  double guess(bool definite) {
     if (options_.extended) return definite ? kExtendedDefiniteGuess : kExtendedGeneralGuess;
     if (definite) return kDefiniteGuess;
+    deep_ = is_deep();
     if (deep_) return std::clamp(1 / (kApart * static_cast<double>(rows_)), kGeneralGuess, kDeepGuess);
     return has_thin_factor(analysis_) ? kThinGuess : kGeneralGuess;
   }
+
+  double sharpen_above() const { return deep_ ? kSharpenDeepAbove : kSharpenAbove; }
 
   /// One factorization of A_s - offset I; its bound includes the data's own error.
   Result<Run> factor(double offset, bool definite) {
@@ -166,7 +169,8 @@ class OffsetScheme {
         settle(rows_ - below->negative, 0, offset, below->bound);
         found_.inertia.undecided = std::exchange(found_.inertia.zero, 0);
       }
-      if (holds && (below->negative <= *options_.all_positive_but || offset <= kSharpenAbove * below->bound))
+      if (holds &&
+          (below->negative <= *options_.all_positive_but || offset <= sharpen_above() * below->bound))
         break;
       offset = kMargin * below->bound;
     }
@@ -212,9 +216,8 @@ class OffsetScheme {
       }
       settle(rows_ - below->negative, above->negative, offset, below->bound);
       have_answer = true;
-      const bool worth_sharpening =
-          found_.inertia.zero > 0 && !options_.resolution &&
-          (deep_ ? offset > kSharpenDeepAbove * bound : options_.sharpen && offset > kSharpenAbove * bound);
+      const bool worth_sharpening = found_.inertia.zero > 0 && !options_.resolution &&
+                                    (deep_ || options_.sharpen) && offset > sharpen_above() * bound;
       if (!worth_sharpening) return found_;
       offset = kMargin * bound;
     }
@@ -227,6 +230,7 @@ class OffsetScheme {
   const OffsetOptions& options_;
   ThreadPool& pool_;
   Index rows_;
+  double norm_ = 0;    ///< of A_s
   bool deep_ = false;  ///< the shift lies amid the spectrum
   CertifiedInertia found_;
 };
