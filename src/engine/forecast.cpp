@@ -1,6 +1,7 @@
 #include <fmt/format.h>
 
 #include <algorithm>
+#include <optional>
 
 #include "base/clock.hpp"
 #include "diagnose/diagnosis.hpp"
@@ -26,11 +27,24 @@ bool definite_expected(const Request& request, bool multipliers) {
   return !multipliers && !request.input.mass;
 }
 
-void forecast_time(const PreparedPencil& pencil, const Request& request, bool definite,
+/// Measured when first asked for, in either precision.
+class Rates {
+ public:
+  const HostRates& of(bool single) {
+    std::optional<HostRates>& rates = single ? single_ : double_;
+    if (!rates) rates = measure_host(single);
+    return *rates;
+  }
+
+ private:
+  std::optional<HostRates> single_, double_;
+};
+
+void forecast_time(const PreparedPencil& pencil, const Request& request, bool definite, Rates& measured,
                    ForecastOutcome& forecast) {
   const Analysis& analysis = pencil.analysis();
   const LikelyWork work = pencil.likely_work(definite);
-  const HostRates rates = measure_host(work.single);
+  const HostRates& rates = measured.of(work.single);
   const bool extended = request.precision == Precision::kExtended;
   const int workers = analysis.schedule.workers;
   const double each =
@@ -48,7 +62,8 @@ void forecast_time(const PreparedPencil& pencil, const Request& request, bool de
 }
 
 /// Shifts of a sweep side by side, where the matrix may be indefinite, whatever it is at 0.
-void forecast_sweep(const PreparedPencil& pencil, const Request& request, ForecastOutcome& forecast) {
+void forecast_sweep(const PreparedPencil& pencil, const Request& request, Rates& measured,
+                    ForecastOutcome& forecast) {
   const Analysis& analysis = pencil.analysis();
   const int threads = analysis.schedule.workers;
   Offset room = pencil.free_bytes();
@@ -57,7 +72,7 @@ void forecast_sweep(const PreparedPencil& pencil, const Request& request, Foreca
   const int each = std::max(1, threads / forecast.side_by_side);
   forecast.peak_bytes_side_by_side = pencil.bytes_side_by_side(forecast.side_by_side, each);
   const LikelyWork work = pencil.likely_work(false);
-  const HostRates rates = measure_host(work.single);
+  const HostRates& rates = measured.of(work.single);
   const double seconds = request.precision == Precision::kExtended
                              ? extended_seconds_forecast(analysis)
                              : factorization_seconds(analysis, rates, each);
@@ -92,8 +107,9 @@ Result<Outcome> run_forecast(const Request& request, const RunContext& context) 
                    diagnosis_bytes(pencil->analysis().tree.rows, shown.most, shown.most, shown));
   forecast.peak_bytes_locate =
       outcome.memory.forecast + with_allowance(locating) - with_allowance(structure.peak_bytes_count);
-  forecast_time(*pencil, request, definite, forecast);
-  forecast_sweep(*pencil, request, forecast);
+  Rates measured;
+  forecast_time(*pencil, request, definite, measured, forecast);
+  forecast_sweep(*pencil, request, measured, forecast);
   outcome.forecast = forecast;
   finish_outcome(outcome, watch.seconds());
   return outcome;
