@@ -7,11 +7,10 @@
 
 namespace stanchion {
 
-/// Rows where M is entirely absent, when M is diagonal; nothing when M has off-diagonal entries.
 struct MassFacts {
   bool diagonal = true;
-  bool non_negative = true;  ///< of the diagonal
-  std::vector<Index> massless;
+  bool non_negative = true;     ///< of the diagonal
+  std::vector<Index> massless;  ///< rows without an entry, ascending
 };
 
 /// Cost: one pass over the entries.

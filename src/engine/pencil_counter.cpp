@@ -72,8 +72,7 @@ std::string at_eigenvalue(const ShiftCount& count, Index many, bool always) {
   }
   return text + ". Remedy: " +
          (always ? "support the model, or strike the directions without stiffness out with --fix; they are "
-                   "there at "
-                   "every shift"
+                   "there at every shift"
                  : "move the shift a little");
 }
 
@@ -81,6 +80,12 @@ std::string at_eigenvalue(const ShiftCount& count, Index many, bool always) {
 
 void PencilCounter::warn(const char* code, std::string message) {
   outcome_.warnings.push_back({code, std::move(message), outcome_.inputs.front().path});
+}
+
+/// Warns of what keeps counts from being counts of values, and has it said before them.
+void PencilCounter::reserve(const char* code, const std::string& statement, const std::string& remedy) {
+  reservations_.push_back(statement + ".");
+  warn(code, remedy.empty() ? statement : statement + ". Remedy: " + remedy);
 }
 
 /// A = [K B^T; B 0]: with q multipliers n-(A) - q is the number of negative directions on the constraints
@@ -187,8 +192,7 @@ Status PencilCounter::judge_massless(const ModelInput& model, const std::vector<
     const std::string reservation =
         "K is singular (at the resolution) on the dofs without mass: K and M may have common null vectors, "
         "and then no count of eigenvalues exists; the inertia of K - s M is reported instead";
-    reservations_.push_back(reservation + ".");
-    warn("massless-and-weightless", reservation);
+    reserve("massless-and-weightless", reservation);
     return {};
   }
   base_ = base_.level == Level::kNone ? found->certificate : weaker(base_, found->certificate);
@@ -246,8 +250,7 @@ Status PencilCounter::judge_stiffness() {
     const std::string reservation =
         "M could not be certified positive definite, so the numbers are negative directions of K - s M, not "
         "counts of eigenvalues below s";
-    reservations_.push_back(reservation + ".");
-    warn("mass-not-definite", reservation);
+    reserve("mass-not-definite", reservation);
     return {};
   }
   const std::string reservation = "K itself is not positive definite (" +
@@ -255,8 +258,7 @@ Status PencilCounter::judge_stiffness() {
                                   std::to_string(definite->inertia.zero) +
                                   " zero directions), so no count of critical factors follows; the inertia "
                                   "of K + f G is reported instead";
-  reservations_.push_back(reservation + ".");
-  warn("stiffness-not-definite", reservation + ". Remedy: run `stanchion check` on K first");
+  reserve("stiffness-not-definite", reservation, "run `stanchion check` on K first");
   return definite->inertia.zero > 0 ? look_for_common_null_vectors() : Status{};
 }
 
@@ -304,9 +306,7 @@ Status PencilCounter::look_for_common_null_vectors() {
       std::to_string(common) + (common == 1 ? " direction is" : " directions are") +
       " zero in K and in G alike (at the resolution): K + f G is singular at every f, so that no critical "
       "factor is defined";
-  reservations_.push_back(reservation + ".");
-  warn("common-null-vectors",
-       reservation + ". Remedy: support the model, or strike these directions out with --fix");
+  reserve("common-null-vectors", reservation, "support the model, or strike these directions out with --fix");
   return {};
 }
 

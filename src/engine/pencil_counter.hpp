@@ -89,6 +89,7 @@ class PencilCounter {
   bool mass_semidefinite() const { return mass_semidefinite_; }
 
   void warn(const char* code, std::string message);
+  void reserve(const char* code, const std::string& statement, const std::string& remedy = {});
 
  private:
   void look_at_multipliers(const ModelInput& model);
