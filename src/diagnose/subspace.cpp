@@ -85,8 +85,9 @@ Columns times(const ShiftedMatrix& matrix, const Columns& x, ThreadPool& pool, I
 void multiply_extended(const ShiftedMatrix& matrix, const Columns& x, Columns& y, ThreadPool& pool) {
   y = x;
   LongVector<double> product(static_cast<std::size_t>(x.rows) * kBlockVectors), block;
+  Buffer<double> memory;
   each_block(y, block, [&](double* eight) {
-    extended_times(matrix, eight, product.data(), pool);
+    extended_times(matrix, eight, product.data(), memory, pool);
     std::copy(product.begin(), product.end(), eight);
   });
 }
