@@ -305,7 +305,8 @@ int PreparedPencil::side_by_side(int most, Offset room) const {
 }
 
 Offset PreparedPencil::bytes_side_by_side(int many, int threads) const {
-  return resident_bytes() + many * with_allowance(bytes_of_one_count(threads, true));
+  const Offset counting = many * with_allowance(bytes_of_one_count(threads, true));
+  return std::max(peak_resident_bytes(), resident_bytes() + counting);
 }
 
 Result<std::optional<DefiniteBase>> PreparedPencil::definite_base(double factor, double smallest_eigenvalue,

@@ -58,7 +58,8 @@ TEST(Forecast, AsManyShiftsOfASweepRunAtATimeAsTheMemoryHolds) {
   const ForecastOutcome uncapped = *answer(run_forecast(request, {})).forecast;
   EXPECT_EQ(uncapped.side_by_side, 3);
   EXPECT_GT(uncapped.seconds_side_by_side, 0);
-  EXPECT_GT(uncapped.peak_bytes_side_by_side, uncapped.peak_bytes_count);
+  // Alike where the tests before have had a higher peak; program_forecast looks at a process of its own.
+  EXPECT_GE(uncapped.peak_bytes_side_by_side, uncapped.peak_bytes_count);
   int before = 0;
   for (int factors = 0; factors <= 4; ++factors) {
     request.memory_cap_bytes = resident_bytes() + factors * uncapped.peak_bytes_solve;

@@ -28,7 +28,6 @@ class ForecastTest(ProgramTest):
         self.assertEqual(run.returncode, 0, run.stderr)
         self.assertRegex(run.stdout.splitlines()[0], r"^One count will take (about|less than) .*s and .*B of memory\.$")
 
-
     def test_the_forecast_of_a_sweep_holds_and_is_not_loose(self):
         for model, pencil, matrix, ends in (("plate", "--geometric", "G.mtx", (1, 6)), ("solid", "--mass", "M.mtx", (1e4, 1e6))):
             with self.subTest(model):
@@ -45,6 +44,7 @@ class ForecastTest(ProgramTest):
                 if not os.environ.get("STANCHION_SANITIZED"):  # a sanitizer holds memory of its own
                     self.assertLessEqual(memory["peak"], 1.05 * memory["forecast"])
                     self.assertLessEqual(memory["forecast"], 2 * memory["peak"])
+                    self.assertGreater(forecast["peak_bytes_side_by_side"], forecast["peak_bytes_count"])
                 alone = self.expect(0, "forecast", *files, "--memory-cap", "1M")["forecast"]
                 self.assertEqual(alone["side_by_side"], 1)
 
