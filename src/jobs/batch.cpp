@@ -173,8 +173,7 @@ class Batch {
         ++waiting;
         continue;
       }
-      // An input that has changed since is read again.
-      if (!digest_is_known(waiting->job->request, files_)) {
+      if (!is_as_digested(*waiting)) {
         ask_for(*waiting);
         ++waiting;
         continue;
@@ -183,6 +182,15 @@ class Batch {
       waiting = queue_.erase(waiting);
     }
     return {};
+  }
+
+  /// Whether its inputs are those of its digest. One that has changed since may have been read meanwhile for
+  /// another job, so that its present content is known and is another.
+  bool is_as_digested(const Waiting& waiting) {
+    const JobRequest& request = waiting.job->request;
+    if (!digest_is_known(request, files_)) return false;
+    const auto present = digest_of(request, files_);
+    return present.ok() && *present == waiting.digest;
   }
 
   Offset need_of(const Waiting& waiting) const {
