@@ -41,7 +41,7 @@ void account(Evidence& e) {
   Index zero = 0, negative = 0;
   for (const Direction& d : e.out.directions)
     (d.sign == 0 ? zero : d.sign < 0 ? negative : zero) += d.sign == 1 ? 0 : d.count;
-  Index found = static_cast<Index>(e.motions.size());
+  Index found = e.motions.count();
   for (const PartChoice& choice : e.choice) found += static_cast<Index>(choice.zero.size());
   if (found < e.inertia.zero && found == zero) {
     Direction rest;

@@ -23,7 +23,7 @@ Diagnosis diagnose(const DiagnosisInput& input, ThreadPool& pool) {
   const Stopwatch watch;
   Diagnosis diagnosis;
   Evidence e(input, pool);
-  if (e.inertia.zero > 0) e.motions = find_node_motions(e.s, input.matrix, pool);
+  if (e.inertia.zero > 0) e.motions = find_local_motions(e.s, input.matrix, pool);
   if (look_near_zero(e)) {
     diagnosis.sharper_resolution = std::max(4 * e.bound(), 0x1p-46 * e.resolution);
     return diagnosis;
@@ -33,6 +33,7 @@ Diagnosis diagnose(const DiagnosisInput& input, ThreadPool& pool) {
   e.couplings = find_stiff_couplings(e.s, input.matrix, kCouplingDigits);
   choose_zero_and_weak(e);
   name_node_motions(e);
+  name_repeated_constraints(e);
   name_bundles(e, false);
   name_bundles(e, true);
   name_negative(e);

@@ -11,9 +11,9 @@
 #include "diagnose/kept_factor.hpp"
 #include "diagnose/local_vectors.hpp"
 #include "diagnose/near_zero.hpp"
-#include "diagnose/node_motions.hpp"
 #include "diagnose/picture.hpp"
 #include "diagnose/probes.hpp"
+#include "diagnose/repeated_constraints.hpp"
 #include "diagnose/seams.hpp"
 #include "diagnose/structure.hpp"
 #include "diagnose/words.hpp"
@@ -38,7 +38,7 @@ struct Evidence {
   KeptFactor factor;
   Inertia inertia;    ///< of the whole matrix
   double resolution;  ///< offset of the kept factor
-  std::vector<NodeMotion> motions;
+  LocalMotions motions;
   NearZero near;
   std::vector<PartChoice> choice;  ///< by part
   ModelPicture picture;

@@ -2,31 +2,22 @@
 
 #include <algorithm>
 #include <cmath>
+#include <utility>
 
 namespace stanchion {
 
 HeldMotions::HeldMotions(const Evidence& e, const std::vector<char>& part_wanted) {
   const auto wanted = [&](Index part) { return part_wanted[static_cast<std::size_t>(part)] != 0; };
-  // Motions of one node each, by node; those of one node are cleared of one another.
-  for (std::size_t m = 0, first = 0; m < e.motions.size(); ++m) {
-    const NodeMotion& node_motion = e.motions[m];
-    if (m > 0 && e.motions[m - 1].node != node_motion.node) first = motions_.size();
-    if (!wanted(e.s.part_of[static_cast<std::size_t>(node_motion.node)])) continue;
-    const auto rows = e.s.rows_of(node_motion.node);
-    Motion motion{-1, {rows.begin(), rows.end()}, node_motion.entry};
-    for (std::size_t k = first; k < motions_.size(); ++k) {
-      const Motion& before = motions_[k];
-      if (before.rows != motion.rows) continue;
-      const auto at = static_cast<std::size_t>(
-          std::find(motion.rows.begin(), motion.rows.end(), before.held) - motion.rows.begin());
-      const double along = motion.entry[at];
-      for (std::size_t i = 0; i < motion.entry.size(); ++i) motion.entry[i] -= along * before.entry[i];
-    }
-    hold(std::move(motion));
+  for (const NodeMotion& motion : e.motions.of_nodes) {
+    const auto rows = e.s.rows_of(motion.node);
+    if (wanted(e.part_of_row(rows.front()))) hold_local({-1, {rows.begin(), rows.end()}, motion.entry});
   }
-  const std::size_t of_nodes = motions_.size();
-  std::vector<std::size_t> held_by(static_cast<std::size_t>(e.s.rows), of_nodes);
-  for (std::size_t k = 0; k < of_nodes; ++k) held_by[static_cast<std::size_t>(motions_[k].held)] = k;
+  for (const RepeatedConstraint& motion : e.motions.of_constraints) {
+    if (wanted(e.part_of_row(motion.rows.front()))) hold_local({-1, motion.rows, motion.entry});
+  }
+  const std::size_t local = motions_.size();
+  std::vector<std::size_t> held_by(static_cast<std::size_t>(e.s.rows), local);
+  for (std::size_t k = 0; k < local; ++k) held_by[static_cast<std::size_t>(motions_[k].held)] = k;
   for (Index part = 0; part < e.s.parts; ++part) {
     if (!wanted(part)) continue;
     const auto rows = e.s.part(part);
@@ -46,13 +37,24 @@ HeldMotions::HeldMotions(const Evidence& e, const std::vector<char>& part_wanted
           motion.entry[place(before.rows[i])] -= along * before.entry[i];
       };
       for (std::size_t i = 0; i < rows.size(); ++i) {
-        if (held_by[static_cast<std::size_t>(rows[i])] < of_nodes)
+        if (held_by[static_cast<std::size_t>(rows[i])] < local)
           clear(motions_[held_by[static_cast<std::size_t>(rows[i])]]);
       }
       for (std::size_t k = first; k < motions_.size(); ++k) clear(motions_[k]);
       hold(std::move(motion));
     }
   }
+}
+
+void HeldMotions::hold_local(Motion motion) {
+  if (!motions_.empty() && motions_.back().rows != motion.rows) group_ = motions_.size();
+  for (std::size_t k = group_; k < motions_.size(); ++k) {
+    const Motion& before = motions_[k];
+    const auto at = std::find(motion.rows.begin(), motion.rows.end(), before.held) - motion.rows.begin();
+    const double along = motion.entry[static_cast<std::size_t>(at)];
+    for (std::size_t i = 0; i < motion.entry.size(); ++i) motion.entry[i] -= along * before.entry[i];
+  }
+  hold(std::move(motion));
 }
 
 void HeldMotions::hold(Motion motion) {

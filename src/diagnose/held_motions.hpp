@@ -29,8 +29,12 @@ class HeldMotions {
     std::vector<double> entry;  ///< 1 at `held`
   };
   void hold(Motion motion);
+  /// A motion of a few rows. Those of a group, one after another on the same rows, are cleared of one
+  /// another.
+  void hold_local(Motion motion);
 
   std::vector<Motion> motions_;
+  std::size_t group_ = 0;  ///< where the group of the last local motion begins
   std::vector<Index> rows_;
 };
 

@@ -33,8 +33,10 @@ PartsJudged parts_to_judge(const Evidence& e) {
     if (e.is_multiplier(row)) constrained[static_cast<std::size_t>(e.part_of_row(row))] = 1;
   }
   // The factor is that of A - cI: the zero directions of a part count as negative there.
-  for (const NodeMotion& motion : e.motions)
+  for (const NodeMotion& motion : e.motions.of_nodes)
     --below[static_cast<std::size_t>(e.s.part_of[static_cast<std::size_t>(motion.node)])];
+  for (const RepeatedConstraint& motion : e.motions.of_constraints)
+    --below[static_cast<std::size_t>(e.part_of_row(motion.rows.front()))];
   for (std::size_t part = 0; part < parts; ++part) {
     const PartChoice& choice = e.choice[part];
     const bool negative = below[part] > static_cast<Index>(choice.zero.size());

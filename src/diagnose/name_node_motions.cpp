@@ -15,7 +15,7 @@ class NodeMotionNamer {
 
   void run() {
     std::map<std::string, std::vector<const NodeMotion*>> groups;
-    for (const NodeMotion& motion : e_.motions) groups[group_of(motion)].push_back(&motion);
+    for (const NodeMotion& motion : e_.motions.of_nodes) groups[group_of(motion)].push_back(&motion);
     for (const auto& [name, members] : groups) add_node_group(name, members);
   }
 

@@ -8,6 +8,9 @@ namespace stanchion {
 /// Null motions of single nodes, gathered by what they are.
 void name_node_motions(Evidence& evidence);
 
+/// Constraints that repeat others, one entry a part.
+void name_repeated_constraints(Evidence& evidence);
+
 /// Zero (or weak) directions of whole parts and clusters, purified and held against the matrix.
 void name_bundles(Evidence& evidence, bool weak);
 

@@ -44,7 +44,7 @@ Index most_near_columns(Index zero) {
 }
 
 bool look_near_zero(Evidence& e) {
-  const Index left = e.inertia.zero - static_cast<Index>(e.motions.size());
+  const Index left = e.inertia.zero - e.motions.count();
   NearZeroOptions options;
   options.columns = whole_blocks(std::min(std::max<Index>(left, 0) + kSpareColumns, kMostColumns));
   options.wanted = std::max(e.in.options.weak_below, 2 * e.resolution);

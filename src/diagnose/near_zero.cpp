@@ -101,7 +101,7 @@ bool any_told_apart(const NearZero& found, const NearZeroOptions& options) {
 }
 
 NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
-                        const std::vector<NodeMotion>& motions, const NearZeroOptions& options, Columns start,
+                        const LocalMotions& motions, const NearZeroOptions& options, Columns start,
                         ThreadPool& pool) {
   NearZero found;
   found.x = filled_up(std::move(start), structure.rows, options.columns, options.seed, pool);

@@ -6,7 +6,7 @@
 #include <vector>
 
 #include "diagnose/kept_factor.hpp"
-#include "diagnose/node_motions.hpp"
+#include "diagnose/repeated_constraints.hpp"
 #include "diagnose/subspace.hpp"
 
 namespace stanchion {
@@ -47,7 +47,7 @@ bool any_told_apart(const NearZero& found, const NearZeroOptions& options);
 /// residuals say which. `start`: vectors of an earlier search with fewer columns; the others are random.
 /// Cost: a round takes one solve and one product. Memory: three times the columns.
 NearZero find_near_zero(const Structure& structure, const ShiftedMatrix& matrix, KeptFactor& factor,
-                        const std::vector<NodeMotion>& motions, const NearZeroOptions& options, Columns start,
+                        const LocalMotions& motions, const NearZeroOptions& options, Columns start,
                         ThreadPool& pool);
 
 }  // namespace stanchion

@@ -7,7 +7,7 @@
 #include "diagnose/constraint_space.hpp"
 #include "diagnose/kept_factor.hpp"
 #include "diagnose/near_zero.hpp"
-#include "diagnose/node_motions.hpp"
+#include "diagnose/repeated_constraints.hpp"
 #include "diagnose/subspace.hpp"
 
 namespace stanchion {
@@ -22,8 +22,8 @@ struct NegativeSearch {
   const Structure& structure;
   const ShiftedMatrix& matrix;
   KeptFactor& factor;
-  const std::vector<NodeMotion>& motions;  ///< to be kept out
-  const NearZero& zero;                    ///< to be kept out: pairs with |value| <= zero_limit
+  const LocalMotions& motions;  ///< to be kept out
+  const NearZero& zero;         ///< to be kept out: pairs with |value| <= zero_limit
   double zero_limit;
   const ConstraintSpace* constraints;  ///< null without multipliers
   std::uint64_t seed;

@@ -154,9 +154,8 @@ TEST(Batch, AnInputThatChangesWhileOthersOfItsJobAreReadIsReadAgain) {
   const std::string second =
       R"({"id": "second", "command": "check", "inputs": {"stiffness": "L.mtx", "mass": "large.mtx"}})"
       "\n";
-  const Worked worked =
-      work(folder, kAnswer + "case $* in *K.mtx*) sleep 0.1; echo changed > L.mtx;; esac\n",
-           check_of("first", "K.mtx") + second);
+  const Worked worked = work(folder, kAnswer + "case $* in *K.mtx*) sleep 0.1; echo changed > L.mtx;; esac\n",
+                             check_of("first", "K.mtx") + second);
   ASSERT_EQ(worked.recorded.size(), 2U);
   EXPECT_EQ(first_begun(worked), "first");
   for (const JobResult& result : worked.recorded) EXPECT_EQ(result.exit_code, 0) << result.reason;
