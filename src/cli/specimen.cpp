@@ -149,7 +149,7 @@ void SpecimenCommand::declare(Arguments& arguments) {
   arguments.text("--edges", given_.edges, "KIND", "plate: simple or clamped");
   arguments.text("--ends", given_.ends, "KIND", "column: fixed-free, pinned-pinned, fixed-pinned, ...");
   arguments.text("--mass", given_.mass, "KIND", "consistent or lumped");
-  arguments.real("--aspect", given_.aspect, "RATIO", "plate: length over width");
+  arguments.real("--aspect", given_.aspect, "RATIO", "plate: length over width; cylinder: over radius");
   arguments.real("--offset", given_.offset, "METRES", "plate: middle surface above the nodes");
   arguments.real("--softness", given_.softness, "RATIO", "soft springs over a typical stiffness");
   arguments.closing(

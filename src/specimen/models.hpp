@@ -7,6 +7,7 @@ namespace stanchion::specimen {
 
 Result<Specimen> make_solid(Offset unknowns, const SpecimenOptions& options);
 Result<Specimen> make_plate(Offset unknowns, const SpecimenOptions& options);
+Result<Specimen> make_cylinder(Offset unknowns, const SpecimenOptions& options);
 Result<Specimen> make_frame(Offset unknowns, const SpecimenOptions& options);
 Result<Specimen> make_column(Offset unknowns, const SpecimenOptions& options);
 Result<Specimen> make_saddle(Offset unknowns, const SpecimenOptions& options);

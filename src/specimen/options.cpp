@@ -94,7 +94,7 @@ Status check_options(const SpecimenEntry& entry, Offset unknowns, const Specimen
   }
   if (!(options.aspect >= 0.1 && options.aspect <= 10)) {
     return Status::bad_usage("aspect-out-of-range", "the aspect ratio must lie between 0.1 and 10", "aspect",
-                             "give length over width, for example 2");
+                             "give length over width, or over radius, for example 2");
   }
   if (!(std::abs(options.offset) <= 1)) {
     return Status::bad_usage(

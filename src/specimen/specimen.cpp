@@ -17,6 +17,8 @@ constexpr std::array kList{
                   "none free loose-part hinge soft-spring negative-spring"},
     SpecimenEntry{"plate", "thin plate in compression or shear, 5 unknowns a node; K, G, M",
                   "none free loose-part soft-spring negative-spring"},
+    SpecimenEntry{"cylinder", "thin cylinder in axial compression, 6 unknowns a node; K, G, M",
+                  "none free loose-part soft-spring negative-spring"},
     SpecimenEntry{"frame", "space frame of several storeys under its floors, 6 unknowns a node; K, G, M",
                   "none free loose-part hinge soft-spring negative-spring"},
     SpecimenEntry{"lattice", "footbridge of two trusses over a harbour lock, under a crowd; K, G, M",
@@ -29,8 +31,8 @@ constexpr std::array kList{
                   "none free"},
 };
 constexpr std::array<Maker, kList.size()> kMakers{
-    specimen::make_solid,  specimen::make_plate,  specimen::make_frame,  specimen::make_lattice,
-    specimen::make_column, specimen::make_saddle, specimen::make_laplace};
+    specimen::make_solid,   specimen::make_plate,  specimen::make_cylinder, specimen::make_frame,
+    specimen::make_lattice, specimen::make_column, specimen::make_saddle,   specimen::make_laplace};
 
 }  // namespace
 

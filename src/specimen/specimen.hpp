@@ -55,7 +55,7 @@ struct SpecimenOptions {
   PlateEdges edges = PlateEdges::kSimple;
   ColumnEnds ends = ColumnEnds::kPinnedPinned;
   MassKind mass = MassKind::kConsistent;
-  double aspect = 2;  ///< plate: length over width, 0.1 to 10
+  double aspect = 2;  ///< plate: length over width; cylinder: length over radius; 0.1 to 10
   double offset =
       0;  ///< plate: height of the middle surface above the nodes, m; couples membrane and bending
   double softness = 1e-8;  ///< kSoftSpring: spring over a typical stiffness, > 0

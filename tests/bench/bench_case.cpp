@@ -35,7 +35,7 @@ BenchArguments read_arguments(int argc, char** argv) {
   BenchArguments a;
   CLI::App app("Times one factorization of a specimen; one JSON line per repetition.");
   app.add_option("model", a.model,
-                 "specimen: solid, plate, frame, lattice, column, saddle, laplace; plate-coupled: "
+                 "specimen: solid, plate, cylinder, frame, lattice, column, saddle, laplace; plate-coupled: "
                  "its middle surface 5 mm off the nodes")
       ->required();
   app.add_option("unknowns", a.unknowns, "about this many equations")->required();

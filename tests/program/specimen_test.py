@@ -18,7 +18,7 @@ class SpecimenTest(ProgramTest):
     def test_list(self):
         run = self.run_program("specimen", "--list")
         self.assertEqual((run.returncode, run.stderr), (0, ""))
-        for name in ("solid", "plate", "frame", "lattice", "column", "saddle", "laplace"):
+        for name in ("solid", "plate", "cylinder", "frame", "lattice", "column", "saddle", "laplace"):
             self.assertIn(f"  {name} ", run.stdout)
 
     def test_a_sound_model_is_definite(self):

@@ -90,7 +90,7 @@ TEST(Options, ColumnEntriesHoldNoRounding) {
 }
 
 TEST(Options, LumpedMassIsDiagonalAndAsHeavy) {
-  for (const char* name : {"solid", "plate", "frame", "lattice", "column", "saddle"}) {
+  for (const char* name : {"solid", "plate", "cylinder", "frame", "lattice", "column", "saddle"}) {
     SpecimenOptions options;
     options.mass = MassKind::kLumped;
     const auto lumped = make_specimen(name, 300, options), consistent = make_specimen(name, 300);
