@@ -16,6 +16,8 @@ namespace {
 /// certified.
 constexpr double kGap = 1e-5;
 constexpr int kMostAttempts = 5;
+/// The values asked are a crowd when they lie within this part of the lowest.
+constexpr double kCrowded = 0.1;
 
 class ResidualBrackets {
  public:
@@ -63,7 +65,8 @@ class ResidualBrackets {
   std::pair<double, double> values_of(const EigenvalueGroup& group) const {
     const double low = 1 / group.high, high = 1 / group.low;
     const auto outwards = [&](double value, double part, int direction) {
-      return value + direction * 0x1p-51 * (std::fabs(value) + 2 * std::fabs(part) + 2 * base_->tau);
+      return value +
+             direction * 0x1p-51 * (std::fabs(value) + 2 * std::fabs(part) + 2 * std::fabs(base_->tau));
     };
     return {outwards(low - base_->tau, low, -1), outwards(high - base_->tau, high, 1)};
   }
@@ -181,6 +184,47 @@ class ResidualBrackets {
   /// Below this no value is counted.
   double lowest() const { return counter_.kind() == CountKind::kBelow ? -INFINITY : counter_.origin(); }
 
+  /// Whether the values asked lie so close together, seen from 0, that many steps would be needed to tell
+  /// them apart. The first of them must be known well enough to go near it.
+  bool crowded(const Candidates& found, Side side, std::size_t wanted) const {
+    if (moved_ || !counter_.two_sided() || side != Side::kPositive) return false;
+    if (wanted < 2 || found.list.size() < wanted || found.leading >= wanted / 2) return false;
+    const Candidate &first = found.list.front(), &last = found.list[wanted - 1];
+    const double width = 1 - last.theta / first.theta;
+    return width > kGap && width < kCrowded && first.ritz.residual < 0.1 * width * first.theta;
+  }
+
+  /// Steps until `look` says so, which leaves in `seen` what there is: from a base near the values once they
+  /// are seen to be a crowd.
+  Result<bool> iterate(const std::function<bool()>& look, const Candidates& seen, Side side,
+                       std::size_t wanted) {
+    bool move = false;
+    auto enough = search_->iterate([&] {
+      if (look()) return true;
+      move = crowded(seen, side, wanted);
+      return move;
+    });
+    if (!enough.ok() || !move) return enough;
+    if (Status status = move_near(seen, wanted); !status.ok()) return status;
+    return search_->iterate(look);
+  }
+
+  /// The search goes on from a base half the width of the crowd before it, or from the old one where none is
+  /// to be had there.
+  Status move_near(const Candidates& found, std::size_t wanted) {
+    moved_ = true;
+    const double first = base_->shift_of(found.list.front().theta),
+                 last = base_->shift_of(found.list[wanted - 1].theta);
+    auto near = base_at(counter_, first - (last - first) / 2, pool_, outcome_);
+    if (!near.ok()) return near.status();
+    if (!*near) return {};
+    search_.reset();
+    base_ = std::move(*near);
+    search_.emplace(counter_, *base_, request_, context_, pool_, outcome_);
+    search_->start(static_cast<Index>(wanted), {static_cast<Index>(wanted) + kBlockVectors, kBlockVectors});
+    return {};
+  }
+
   // ---- a range
   // --------------------------------------------------------------------------------------------------
 
@@ -223,8 +267,9 @@ class ResidualBrackets {
       auto started = search_->start_inside(from, to, static_cast<Index>(between));
       if (!started.ok()) return started.status();
       if (*started) {
-        auto done = search_range(low, *high, from, to, [&](std::vector<Candidate>& chosen) {
-          const Candidates nearest = search_->candidates(Side::kBoth);
+        Candidates nearest;
+        auto done = search_range(low, *high, from, to, nearest, 0, [&](std::vector<Candidate>& chosen) {
+          nearest = search_->candidates(Side::kBoth);
           chosen = inside({&nearest}, from, to);
           return nearest.leading >= static_cast<std::size_t>(between);
         });
@@ -234,8 +279,11 @@ class ResidualBrackets {
     const auto wanted = static_cast<Index>(positive + negative);
     const Index keep = wanted + kBlockVectors;
     search_->start(wanted, {keep, counter_.kind() == CountKind::kBelow ? 0 : keep});
-    return search_range(low, *high, from, to, [&](std::vector<Candidate>& chosen) {
-      const Candidates up = search_->candidates(Side::kPositive), down = search_->candidates(Side::kNegative);
+    Candidates up;
+    const auto crowd = static_cast<std::size_t>(negative == 0 ? positive : 0);
+    return search_range(low, *high, from, to, up, crowd, [&](std::vector<Candidate>& chosen) {
+      up = search_->candidates(Side::kPositive);
+      const Candidates down = search_->candidates(Side::kNegative);
       chosen = inside({&up, &down}, from, to);
       return up.leading >= static_cast<std::size_t>(positive) &&
              down.leading >= static_cast<std::size_t>(negative);
@@ -248,12 +296,14 @@ class ResidualBrackets {
     return one_side && from_outside > 2 * between + 4 * kBlockVectors;
   }
 
-  /// `enough` looks at the space, chooses from it, and says whether the search may end.
+  /// `look` looks at the space, leaves in `seen` what there is, chooses from it, and says whether the search
+  /// may end. `crowd`: so many of the positive side may be a crowd; 0: none.
   Result<bool> search_range(const std::optional<CountFact>& low, const CountFact& high, double from,
-                            double to, const std::function<bool(std::vector<Candidate>&)>& look) {
+                            double to, const Candidates& seen, std::size_t crowd,
+                            const std::function<bool(std::vector<Candidate>&)>& look) {
     for (int attempt = 0; attempt < kMostAttempts; ++attempt) {
       std::vector<Candidate> chosen;
-      auto enough = search_->iterate([&] { return look(chosen); });
+      auto enough = iterate([&] { return look(chosen); }, seen, Side::kPositive, crowd);
       if (!enough.ok()) return enough.status();
       auto pairs = search_->pairs_of(chosen, chosen.size());
       if (!pairs.ok()) return pairs.status();
@@ -308,11 +358,12 @@ class ResidualBrackets {
     std::size_t many = 0;
     for (int attempt = 0; attempt < kMostAttempts; ++attempt) {
       Candidates found;
-      auto enough = search_->iterate([&] {
+      const auto look = [&] {
         found = search_->candidates(side);
         many = end_of_cluster(found, wanted);
         return many > 0;
-      });
+      };
+      auto enough = iterate(look, found, side, wanted);
       if (!enough.ok()) return enough.status();
       if (!*enough) many = found.leading;  // the space holds no more: perhaps there are fewer
       auto pairs = search_->pairs_of(found.list, many);
@@ -434,6 +485,7 @@ class ResidualBrackets {
   ResidualAnswer answer_;
   std::optional<SpectralBase> base_;
   std::optional<ModeSearch> search_;
+  bool moved_ = false;  ///< a base near the values was made, or tried
 };
 
 }  // namespace

@@ -11,6 +11,10 @@ namespace {
 /// than a test.
 constexpr double kProofIsCheap = 2e9;
 
+bool small(const PencilCounter& counter) {
+  return counter.pencil().analysis().forecast.factor_flops < kProofIsCheap;
+}
+
 class BaseSettler {
  public:
   BaseSettler(PencilCounter& counter, const Request& request, const RunContext& context,
@@ -28,11 +32,9 @@ class BaseSettler {
   }
 
  private:
-  bool small() const { return counter_.pencil().analysis().forecast.factor_flops < kProofIsCheap; }
-
   Status settle() {
     const bool factors = request_.pencil == Pencil::kGeometric;
-    if ((!factors || small()) && counter_.kind() == CountKind::kDirections) {
+    if ((!factors || small(counter_)) && counter_.kind() == CountKind::kDirections) {
       if (Status status = counter_.judge(); !status.ok()) return status;
       if (counter_.kind() == CountKind::kDirections) return {};
     }
@@ -118,7 +120,7 @@ class BaseSettler {
 
   Result<bool> try_tau(double tau) {
     double bound = 0;
-    if (small()) {
+    if (small(counter_)) {
       auto found = counter_.inertia_at(-tau, true);
       if (!found.ok()) return found.status();
       bound = found->certificate.smallest_eigenvalue_above.value_or(0);
@@ -146,6 +148,26 @@ class BaseSettler {
 };
 
 }  // namespace
+
+Result<std::optional<SpectralBase>> base_at(PencilCounter& counter, double sigma, ThreadPool& pool,
+                                            Outcome& outcome) {
+  using Nothing = std::optional<SpectralBase>;
+  const auto unless_memory = [](const Status& status) -> Result<Nothing> {
+    if (status.kind() == StatusKind::kResourceLimit) return Nothing();
+    return status;
+  };
+  double bound = 0;
+  if (small(counter)) {
+    auto found = counter.inertia_at(sigma, true);
+    if (!found.ok()) return unless_memory(found.status());
+    bound = found->certificate.smallest_eigenvalue_above.value_or(0);
+    if (!(bound > 0)) return Nothing();
+  }
+  auto base = counter.pencil().definite_base(counter.factor_of(sigma), bound, pool, outcome);
+  if (!base.ok()) return unless_memory(base.status());
+  if (!*base) return Nothing();
+  return Nothing(SpectralBase{std::move(**base), counter.pencil().second(-counter.factor_of(1)), -sigma, 0});
+}
 
 Result<std::optional<SpectralBase>> settle_base(PencilCounter& counter, const Request& request,
                                                 const RunContext& context, const CountAt& count_at,

@@ -20,6 +20,13 @@ struct SpectralBase {
   double theta_of(double shift) const { return 1 / (shift + tau); }
 };
 
+/// The same from K + sigma G where that is definite: values just beyond `sigma` then stand apart, where from
+/// 0 they look alike. Nothing where it cannot be shown definite, or memory does not allow. K must be
+/// definite, and `sigma` on the side that is asked about: no value lies between 0 and it then (convexity).
+/// Cost: one kept factorization; of small models two, for a proof.
+Result<std::optional<SpectralBase>> base_at(PencilCounter& counter, double sigma, ThreadPool& pool,
+                                            Outcome& outcome);
+
 /// A count at one shift, made once and remembered by whoever asks; nothing where none is certified.
 using CountAt = std::function<Result<std::optional<CountFact>>(double shift)>;
 

@@ -15,6 +15,7 @@ import sys
 MODELS = {
     "plate_50k": ("plate", 50_000, "geometric"),
     "plate_200k": ("plate", 200_000, "geometric"),
+    "cylinder_50k": ("cylinder", 50_000, "geometric"),
     "frame_20k": ("frame", 20_000, "geometric"),
     "solid_30k": ("solid", 30_000, "mass"),
     "solid_100k": ("solid", 100_000, "mass"),

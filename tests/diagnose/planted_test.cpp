@@ -111,7 +111,7 @@ TEST_P(Planted, NegativeSpringIsFoundAtItsDof) {
 INSTANTIATE_TEST_SUITE_P(Specimens, Planted,
                          testing::Values(Size{"solid", 500}, Size{"solid", 6000}, Size{"plate", 600},
                                          Size{"plate", 8000}, Size{"frame", 600}, Size{"frame", 6000},
-                                         Size{"lattice", 900}),
+                                         Size{"lattice", 900}, Size{"cylinder", 600}, Size{"cylinder", 6000}),
                          [](const auto& given) {
                            return given.param.name + std::string("_") + std::to_string(given.param.unknowns);
                          });
@@ -260,15 +260,15 @@ TEST_P(Combined, EveryDefectIsNamedApartWithItsNodes) {
 INSTANTIATE_TEST_SUITE_P(Specimens, Combined,
                          testing::Values(Size{"solid", 500}, Size{"solid", 4000}, Size{"plate", 600},
                                          Size{"plate", 6000}, Size{"frame", 600}, Size{"frame", 4000},
-                                         Size{"lattice", 900}, Size{"saddle", 900}, Size{"column", 600},
-                                         Size{"laplace", 600}),
+                                         Size{"lattice", 900}, Size{"cylinder", 600}, Size{"cylinder", 4000},
+                                         Size{"saddle", 900}, Size{"column", 600}, Size{"laplace", 600}),
                          [](const auto& given) {
                            return given.param.name + std::string("_") + std::to_string(given.param.unknowns);
                          });
 
 /// Places written to six decimals and entries to twelve digits: what is zero is so at the resolution only.
 TEST(CombinedRounded, EveryDefectIsNamedApartWithItsNodes) {
-  for (const char* name : {"solid", "plate", "frame", "lattice", "saddle"}) {
+  for (const char* name : {"solid", "plate", "cylinder", "frame", "lattice", "saddle"}) {
     SCOPED_TRACE(name);
     const Combination made = combination_of(name, 900, 3, {1e-6, 1e-12});
     expect_planted(made, ask(made.model));

@@ -43,7 +43,8 @@ def thin_shell(length, m, n):
 
 class CylinderTest(ProgramTest):
     def lowest(self, aspect, along, around, many):
-        """The lowest factors of a mesh, each with its multiplicity; certified, and narrower than 1e-8."""
+        """The lowest factors of a mesh, each with its multiplicity; certified, and narrower than 1e-8. The entries are rounded,
+        so that a pair may be two values that agree to 13 digits (measured: 1.4e-13 apart): they are joined."""
         folder = self.folder / f"{along}x{around}"
         run = self.run_program("specimen", "cylinder", "--unknowns", 6 * along * around, "--aspect", aspect, "--format", "npz",
                                "--out", folder)
@@ -53,7 +54,13 @@ class CylinderTest(ProgramTest):
                                "--first", many)
         for value in document["critical"]:
             self.assertLess(value["high"] - value["low"], 1e-8 * value["high"])
-        return [((value["low"] + value["high"]) / 2, value["multiplicity"]) for value in document["critical"]]
+        joined = []
+        for value in document["critical"]:
+            middle, times = (value["low"] + value["high"]) / 2, value["multiplicity"]
+            if joined and middle - joined[-1][0] < 1e-12 * middle:
+                times += joined.pop()[1]
+            joined.append((middle, times))
+        return joined
 
     def expect_limits(self, aspect, coarse, fine, remainder):
         """`coarse` and `fine`, of half the mesh width, map waves (m, n) to factors: errors fall with the square of the mesh
@@ -103,6 +110,32 @@ class CylinderTest(ProgramTest):
                 continue  # its errors nearly cancel: 3.3e-4 and 4.6e-5
             errors = [found[along][wave] / thin_shell(0.6 * RADIUS, *wave) - 1 for along in (12, 24)]
             self.assertAlmostEqual(math.log2(errors[0] / errors[1]), 2, delta=0.1)  # measured: 1.92 to 1.95
+
+    def test_a_crowd_takes_few_factorizations(self):
+        # Seen from 0 the twenty lowest of this long cylinder lie within 3 % of each other, and the crowd goes on behind them:
+        # 1,083 factorizations by counts, and an interval of 1e-6 each, where the search does not go near them.
+        run = self.run_program("specimen", "cylinder", "--unknowns", 6000, "--aspect", 4, "--format", "npz", "--out", self.folder)
+        self.assertEqual((run.returncode, run.stderr), (0, ""))
+        model = self.folder / "K.npz", "--geometric", self.folder / "G.npz", "--dofs", self.folder / "dofs.csv"
+        first = self.expect(0, "bracket", *model, "--first", 20)
+        end = first["complete"]["to"]
+        below = self.expect(0, "bracket", *model, "--below", end)
+        for document in first, below:
+            self.assertEqual(sum(value["multiplicity"] for value in document["critical"]), document["complete"]["count"])
+            self.assertLessEqual(document["work"]["factorizations"], 6 + len(document["critical"]) / 4)
+            self.assertLessEqual({value["multiplicity"] for value in document["critical"]}, {1, 2})
+            for value in document["critical"]:
+                self.assertLess(value["high"] - value["low"], 1e-8 * value["high"])
+        self.assertGreaterEqual(first["complete"]["count"], 20)
+        for a, b in zip(first["critical"], below["critical"], strict=True):
+            self.assertLess(max(a["low"], b["low"]), min(a["high"], b["high"]))
+        # Counts alone, between the values: as many on either side of every gap that four digits can name.
+        values = first["critical"]
+        gaps = [(a["high"] + b["low"]) / 2 for a, b in zip(values, values[1:]) if b["low"] - a["high"] > 1e-3]
+        self.assertGreater(len(gaps), 5)
+        document = self.expect(0, "count", *model, "--at", ",".join(map(repr, gaps)))
+        for gap, count in zip(gaps, document["counts"], strict=True):
+            self.assertEqual(count["below"], sum(value["multiplicity"] for value in values if value["high"] < gap))
 
 
 if __name__ == "__main__":
