@@ -18,6 +18,8 @@ constexpr double kGap = 1e-5;
 constexpr int kMostAttempts = 5;
 /// The values asked are a crowd when they lie within this part of the lowest.
 constexpr double kCrowded = 0.1;
+/// Steps before that is looked at, and one more for four values: most models need no more.
+constexpr Index kPatience = 16;
 
 class ResidualBrackets {
  public:
@@ -184,10 +186,10 @@ class ResidualBrackets {
   /// Below this no value is counted.
   double lowest() const { return counter_.kind() == CountKind::kBelow ? -INFINITY : counter_.origin(); }
 
-  /// Whether the values asked lie so close together, seen from 0, that many steps would be needed to tell
-  /// them apart. The first of them must be known well enough to go near it.
+  /// Whether the values asked, seen from 0, are hard to tell apart, and the first well enough known to go near.
   bool crowded(const Candidates& found, Side side, std::size_t wanted) const {
     if (moved_ || !counter_.two_sided() || side != Side::kPositive) return false;
+    if (search_->steps() < kPatience + static_cast<Index>(wanted) / 4) return false;
     if (wanted < 2 || found.list.size() < wanted || found.leading >= wanted / 2) return false;
     const Candidate &first = found.list.front(), &last = found.list[wanted - 1];
     const double width = 1 - last.theta / first.theta;
@@ -209,13 +211,12 @@ class ResidualBrackets {
     return search_->iterate(look);
   }
 
-  /// The search goes on from a base half the width of the crowd before it, or from the old one where none is
-  /// to be had there.
+  /// Goes on from a base half the width of the crowd before it; from the old one where none is to be had.
   Status move_near(const Candidates& found, std::size_t wanted) {
     moved_ = true;
-    const double first = base_->shift_of(found.list.front().theta),
-                 last = base_->shift_of(found.list[wanted - 1].theta);
-    auto near = base_at(counter_, first - (last - first) / 2, pool_, outcome_);
+    const double first = base_->shift_of(found.list.front().theta);
+    const double width = base_->shift_of(found.list[wanted - 1].theta) - first;
+    auto near = base_at(counter_, first - width / 2, pool_, outcome_);
     if (!near.ok()) return near.status();
     if (!*near) return {};
     search_.reset();

@@ -51,6 +51,9 @@ class ModeSearch {
   /// already, a block of fresh random vectors joins the space.
   void look_closer();
 
+  /// Block steps since the last start.
+  Index steps() const { return lanczos_->steps(); }
+
   /// Size of the largest theta found so far; 0 when nothing is.
   double largest();
 
