@@ -186,7 +186,7 @@ class ResidualBrackets {
   /// Below this no value is counted.
   double lowest() const { return counter_.kind() == CountKind::kBelow ? -INFINITY : counter_.origin(); }
 
-  /// Whether the values asked, seen from 0, are hard to tell apart, and the first well enough known to go near.
+  /// Whether the values asked, seen from 0, are hard to tell apart, and the first is known well enough.
   bool crowded(const Candidates& found, Side side, std::size_t wanted) const {
     if (moved_ || !counter_.two_sided() || side != Side::kPositive) return false;
     if (search_->steps() < kPatience + static_cast<Index>(wanted) / 4) return false;
@@ -196,8 +196,7 @@ class ResidualBrackets {
     return width > kGap && width < kCrowded && first.ritz.residual < 0.1 * width * first.theta;
   }
 
-  /// Steps until `look` says so, which leaves in `seen` what there is: from a base near the values once they
-  /// are seen to be a crowd.
+  /// Steps until `look`, which leaves in `seen` what there is, says so; from a base near a crowd once seen.
   Result<bool> iterate(const std::function<bool()>& look, const Candidates& seen, Side side,
                        std::size_t wanted) {
     bool move = false;
