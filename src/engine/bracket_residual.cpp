@@ -16,10 +16,6 @@ namespace {
 /// certified.
 constexpr double kGap = 1e-5;
 constexpr int kMostAttempts = 5;
-/// The values asked are a crowd when they lie within this part of the lowest.
-constexpr double kCrowded = 0.1;
-/// Steps before that is looked at, and one more for four values: most models need no more.
-constexpr Index kPatience = 16;
 
 class ResidualBrackets {
  public:
@@ -186,42 +182,33 @@ class ResidualBrackets {
   /// Below this no value is counted.
   double lowest() const { return counter_.kind() == CountKind::kBelow ? -INFINITY : counter_.origin(); }
 
-  /// Whether the values asked, seen from 0, are hard to tell apart, and the first is known well enough.
-  bool crowded(const Candidates& found, Side side, std::size_t wanted) const {
-    if (moved_ || !counter_.two_sided() || side != Side::kPositive) return false;
-    if (search_->steps() < kPatience + static_cast<Index>(wanted) / 4) return false;
-    if (wanted < 2 || found.list.size() < wanted || found.leading >= wanted / 2) return false;
-    const Candidate &first = found.list.front(), &last = found.list[wanted - 1];
-    const double width = 1 - last.theta / first.theta;
-    return width > kGap && width < kCrowded && first.ritz.residual < 0.1 * width * first.theta;
-  }
-
   /// Steps until `look`, which leaves in `seen` what there is, says so; from a base near a crowd once seen.
   Result<bool> iterate(const std::function<bool()>& look, const Candidates& seen, Side side,
                        std::size_t wanted) {
     bool move = false;
     auto enough = search_->iterate([&] {
       if (look()) return true;
-      move = crowded(seen, side, wanted);
+      move = !moved_ && counter_.two_sided() && side != Side::kBoth && search_->crowded(seen, wanted);
       return move;
     });
     if (!enough.ok() || !move) return enough;
-    if (Status status = move_near(seen, wanted); !status.ok()) return status;
+    if (Status status = move_near(seen, side, wanted); !status.ok()) return status;
     return search_->iterate(look);
   }
 
   /// Goes on from a base half the width of the crowd before it; from the old one where none is to be had.
-  Status move_near(const Candidates& found, std::size_t wanted) {
+  Status move_near(const Candidates& found, Side side, std::size_t wanted) {
     moved_ = true;
     const double first = base_->shift_of(found.list.front().theta);
     const double width = base_->shift_of(found.list[wanted - 1].theta) - first;
+    search_.reset();  // its vectors take more memory than the second factor
     auto near = base_at(counter_, first - width / 2, pool_, outcome_);
     if (!near.ok()) return near.status();
-    if (!*near) return {};
-    search_.reset();
-    base_ = std::move(*near);
+    if (*near) base_ = std::move(*near);
     search_.emplace(counter_, *base_, request_, context_, pool_, outcome_);
-    search_->start(static_cast<Index>(wanted), {static_cast<Index>(wanted) + kBlockVectors, kBlockVectors});
+    const Index most = static_cast<Index>(wanted) + kBlockVectors;
+    search_->start(static_cast<Index>(wanted), side == Side::kPositive ? KeptValues{most, kBlockVectors}
+                                                                       : KeptValues{kBlockVectors, most});
     return {};
   }
 
@@ -268,26 +255,28 @@ class ResidualBrackets {
       if (!started.ok()) return started.status();
       if (*started) {
         Candidates nearest;
-        auto done = search_range(low, *high, from, to, nearest, 0, [&](std::vector<Candidate>& chosen) {
-          nearest = search_->candidates(Side::kBoth);
-          chosen = inside({&nearest}, from, to);
-          return nearest.leading >= static_cast<std::size_t>(between);
-        });
+        auto done =
+            search_range(low, *high, from, to, nearest, Side::kBoth, [&](std::vector<Candidate>& chosen) {
+              nearest = search_->candidates(Side::kBoth);
+              chosen = inside({&nearest}, from, to);
+              return nearest.leading >= static_cast<std::size_t>(between);
+            });
         if (!done.ok() || *done) return done;
       }
     }
     const auto wanted = static_cast<Index>(positive + negative);
     const Index keep = wanted + kBlockVectors;
     search_->start(wanted, {keep, counter_.kind() == CountKind::kBelow ? 0 : keep});
-    Candidates up;
-    const auto crowd = static_cast<std::size_t>(negative == 0 ? positive : 0);
-    return search_range(low, *high, from, to, up, crowd, [&](std::vector<Candidate>& chosen) {
-      up = search_->candidates(Side::kPositive);
-      const Candidates down = search_->candidates(Side::kNegative);
-      chosen = inside({&up, &down}, from, to);
-      return up.leading >= static_cast<std::size_t>(positive) &&
-             down.leading >= static_cast<std::size_t>(negative);
-    });
+    Candidates up, down;
+    const Side side = negative == 0 ? Side::kPositive : positive == 0 ? Side::kNegative : Side::kBoth;
+    return search_range(low, *high, from, to, negative == 0 ? up : down, side,
+                        [&](std::vector<Candidate>& chosen) {
+                          up = search_->candidates(Side::kPositive);
+                          down = search_->candidates(Side::kNegative);
+                          chosen = inside({&up, &down}, from, to);
+                          return up.leading >= static_cast<std::size_t>(positive) &&
+                                 down.leading >= static_cast<std::size_t>(negative);
+                        });
   }
 
   /// Whether the values asked lie so far inside that one more factorization, among them, pays.
@@ -297,13 +286,13 @@ class ResidualBrackets {
   }
 
   /// `look` looks at the space, leaves in `seen` what there is, chooses from it, and says whether the search
-  /// may end. `crowd`: so many of the positive side may be a crowd; 0: none.
+  /// may end. `side`: where all of them are; both: no crowd is looked for.
   Result<bool> search_range(const std::optional<CountFact>& low, const CountFact& high, double from,
-                            double to, const Candidates& seen, std::size_t crowd,
+                            double to, const Candidates& seen, Side side,
                             const std::function<bool(std::vector<Candidate>&)>& look) {
     for (int attempt = 0; attempt < kMostAttempts; ++attempt) {
       std::vector<Candidate> chosen;
-      auto enough = iterate([&] { return look(chosen); }, seen, Side::kPositive, crowd);
+      auto enough = iterate([&] { return look(chosen); }, seen, side, search_->wanted());
       if (!enough.ok()) return enough.status();
       auto pairs = search_->pairs_of(chosen, chosen.size());
       if (!pairs.ok()) return pairs.status();
@@ -396,8 +385,9 @@ class ResidualBrackets {
       const double last = std::fabs(found.list[many - 1].theta), next = std::fabs(found.list[many].theta);
       theta = next + 0.5 * (last - next);
     }
-    double end = round_between(base_->shift_of(theta * (1 - 0.2 * gap_of(found, many, theta))),
-                               base_->shift_of(theta * (1 + 0.2 * gap_of(found, many, theta))));
+    const double gap = 0.2 * gap_of(found, many, theta), sign = side == Side::kNegative ? -1 : 1;
+    double end = round_between(std::fabs(base_->shift_of(sign * theta * (1 - gap))),
+                               std::fabs(base_->shift_of(sign * theta * (1 + gap))));
     if (many < wanted) {
       auto reached = look_further(end, side, static_cast<Offset>(many));
       if (!reached.ok()) return reached.status();

@@ -16,6 +16,10 @@ constexpr double kInside = 1e-3;
 /// Thetas stand apart when their gap is that many times their residuals; so many may be one group.
 constexpr double kApart = 4;
 constexpr std::size_t kMostTogether = 16;
+/// Values are a crowd when they lie within this part of the lowest, apart from clusters.
+constexpr double kCrowd = 0.1, kCluster = 1e-5;
+/// Steps before that is looked at, and one more for four values: most models need no more.
+constexpr Index kPatience = 16;
 
 void append(std::vector<ResidualPair>& all, std::vector<ResidualPair> more) {
   for (ResidualPair& pair : more) all.push_back(std::move(pair));
@@ -192,6 +196,14 @@ Candidates ModeSearch::candidates(Side side) {
   }
   while (found.leading < found.list.size() && found.list[found.leading].close) ++found.leading;
   return found;
+}
+
+bool ModeSearch::crowded(const Candidates& found, std::size_t wanted) const {
+  if (wanted < 2 || found.list.size() < wanted || found.leading >= wanted / 2) return false;
+  if (lanczos_->steps() < kPatience + static_cast<Index>(wanted) / 4) return false;
+  const Candidate &first = found.list.front(), &last = found.list[wanted - 1];
+  const double width = 1 - last.theta / first.theta;
+  return width > kCluster && width < kCrowd && first.ritz.residual < 0.1 * width * std::fabs(first.theta);
 }
 
 double ModeSearch::largest() {

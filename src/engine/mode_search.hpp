@@ -51,8 +51,12 @@ class ModeSearch {
   /// already, a block of fresh random vectors joins the space.
   void look_closer();
 
-  /// Block steps since the last start.
-  Index steps() const { return lanczos_->steps(); }
+  /// Whether the first `wanted` of `found`, all of one side, are so hard to tell apart from here that a base
+  /// near them pays: they lie close together, many steps were taken, and the first is known well enough.
+  bool crowded(const Candidates& found, std::size_t wanted) const;
+
+  /// So many were asked of the last start.
+  std::size_t wanted() const { return static_cast<std::size_t>(wanted_); }
 
   /// Size of the largest theta found so far; 0 when nothing is.
   double largest();
