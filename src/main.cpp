@@ -7,6 +7,7 @@
 
 #include "cli/command_line.hpp"
 #include "cli/terminal.hpp"
+#include "dense/blas.hpp"
 #include "model/exit_code.hpp"
 
 namespace {
@@ -47,6 +48,7 @@ int fail(const Status& failure) {
 }  // namespace
 
 int main(int argc, char** argv) {
+  stanchion::end_blas_threads();
   try {
     return run(std::vector<std::string>(argv + (argc > 0 ? 1 : 0), argv + argc));
   } catch (const std::bad_alloc&) {

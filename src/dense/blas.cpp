@@ -26,6 +26,13 @@ Function find_symbol(const char* name) {
 // it.
 constexpr std::size_t kOpenBlasBytes = std::size_t{136} << 20;
 
+/// Set before there are threads of ours. Setting the number once more would start the library's again.
+bool threads_ended = false;
+
+void set_single_threaded() {
+  if (const auto set = find_symbol<void (*)(int)>("openblas_set_num_threads")) set(1);
+}
+
 /// Whether the system would give so much now, under the limits of the process.
 bool there_is_room(std::size_t bytes) {
   void* const place = ::mmap(nullptr, bytes, PROT_READ | PROT_WRITE, MAP_PRIVATE | MAP_ANONYMOUS, -1, 0);
@@ -73,8 +80,16 @@ void gemm_tn(Index m, Index n, Index k, double alpha, const double* a, Index lda
 }
 
 void use_single_threaded_blas(int callers) {
-  if (auto set = find_symbol<void (*)(int)>("openblas_set_num_threads")) set(1);
+  if (!threads_ended) set_single_threaded();
   reserve_for(callers);
+}
+
+void end_blas_threads() {
+  set_single_threaded();
+  if (const auto shut_down = find_symbol<int (*)()>("blas_thread_shutdown_")) {
+    shut_down();
+    threads_ended = true;
+  }
 }
 
 std::string blas_description() {

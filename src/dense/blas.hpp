@@ -26,6 +26,11 @@ void gemm_tn(Index m, Index n, Index k, double alpha, const double* a, Index lda
 /// Thread safe.
 void use_single_threaded_blas(int callers = 1);
 
+/// Ends the threads that OpenBLAS starts when it is loaded, and turns them off for good: they poll for work
+/// in the first tens of milliseconds, where the threads of a small job would run. For a program, before it
+/// has other threads: not for a library, whose host may multiply meanwhile.
+void end_blas_threads();
+
 /// Name, version and kernel of the BLAS in use, as it reports itself.
 std::string blas_description();
 

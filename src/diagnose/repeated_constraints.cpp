@@ -34,7 +34,8 @@ class Finder {
     });
     for (std::size_t begin = 0; begin < columns_.size();) {
       std::size_t end = begin + 1;
-      while (end < columns_.size() && end - begin < kMostTogether && compare(columns_[begin], columns_[end]) == 0)
+      while (end < columns_.size() && end - begin < kMostTogether &&
+             compare(columns_[begin], columns_[end]) == 0)
         ++end;
       if (end - begin > 1) add_group(std::span(columns_).subspan(begin, end - begin));
       begin = end;
@@ -175,8 +176,10 @@ void remove(const LocalMotions& motions, const Structure& structure, Columns& x)
   for (const RepeatedConstraint& motion : motions.of_constraints) {
     for (Index c = 0; c < x.count; ++c) {
       double along = 0;
-      for (std::size_t r = 0; r < motion.entry.size(); ++r) along += motion.entry[r] * x.row(motion.rows[r])[c];
-      for (std::size_t r = 0; r < motion.entry.size(); ++r) x.row(motion.rows[r])[c] -= along * motion.entry[r];
+      for (std::size_t r = 0; r < motion.entry.size(); ++r)
+        along += motion.entry[r] * x.row(motion.rows[r])[c];
+      for (std::size_t r = 0; r < motion.entry.size(); ++r)
+        x.row(motion.rows[r])[c] -= along * motion.entry[r];
     }
   }
 }

@@ -1,6 +1,7 @@
 #include "order/ordering.hpp"
 
 #include <algorithm>
+#include <cmath>
 #include <future>
 #include <system_error>
 #include <vector>
@@ -16,12 +17,17 @@
 namespace stanchion {
 namespace {
 
-constexpr Index kDissectAbove = 120;    // smaller parts: minimum degree alone
-constexpr Index kTryBothUpTo = 20'000;  // minimum degree is then a small part of the time
-constexpr double kThinDegree = 3.0;     // chains and trees: dissection only adds fill
+constexpr Index kDissectAbove = 120;      // smaller parts: minimum degree alone
+constexpr Index kTryBothUpTo = 20'000;    // minimum degree is then a small part of the time
+constexpr Offset kEntriesAlone = 50'000;  // so few are grouped before another thread has started
+constexpr double kThinDegree = 3.0;       // chains and trees: dissection only adds fill
 /// Minimum degree must save this share of the operations to be taken: under dissection the tree is balanced,
 /// and error bounds of indefinite matrices are smaller.
 constexpr double kSaving = 0.1;
+
+/// Dissection takes as long as so many operations of a small factorization for each neighbour of a vertex
+/// (measured); where minimum degree needs fewer than that, and a hundredth of a second's, it will do.
+constexpr double kDissectionFlops = 6000, kSmallFlops = 5e7;
 
 /// Operations of the factorization under this order.
 double predicted_flops(const Graph& graph, const Buffer<Index>& vertex_at) {
@@ -52,9 +58,12 @@ Result<PartOrder> order_part(const Graph& part, bool other_order, int threads) {
     best.vertex_at = std::move(*order);
   }
   if (dissect) {
+    const double flops = minimum ? predicted_flops(part, best.vertex_at) : INFINITY;
+    const double of_dissection = kDissectionFlops * static_cast<double>(part.adjacency.size());
+    if (flops < std::min(of_dissection, kSmallFlops)) return best;
     auto order = nested_dissection(part, threads);
     if (!order.ok()) return order.status();
-    if (!minimum || predicted_flops(part, *order) * (1 - kSaving) < predicted_flops(part, best.vertex_at)) {
+    if (predicted_flops(part, *order) * (1 - kSaving) < flops) {
       best = {std::move(*order), true};
     }
   }
@@ -109,7 +118,7 @@ Result<Buffer<Index>> order_parts(const Graph& graph, const Components& componen
 /// Of everything that order_parts() looks at. The first line changes whenever its rules do.
 std::string digest_of(const Graph& graph, bool other_order) {
   Sha256 digest;
-  digest.update(other_order ? "order 4, minimum degree" : "order 4");
+  digest.update(other_order ? "order 5, minimum degree" : "order 5");
   const auto add = [&digest](const auto& buffer) {
     const auto count = static_cast<std::uint64_t>(buffer.size());
     digest.update({reinterpret_cast<const char*>(&count), sizeof count});
@@ -199,7 +208,7 @@ Result<Elimination> order_equations(const OrderingInput& input) {
   // parts): found by another thread meanwhile, for the first cut of a dissection is one thread's work.
   std::future<ExactStructure> exact;
   if (coarsens) {
-    exact = begin(input.threads > 1, [&pattern, &coarse, &alike] {
+    exact = begin(input.threads > 1 && pattern.row.size() > kEntriesAlone, [&pattern, &coarse, &alike] {
       if (alike.group_of.empty()) alike = group_by_neighbourhood(pattern);
       ExactStructure found{intersect(coarse, alike), {}};
       found.graph = quotient_graph(pattern, found.grouping);

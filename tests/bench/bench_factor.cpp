@@ -5,6 +5,7 @@
 #include "base/clock.hpp"
 #include "bench/bench_record.hpp"
 #include "bench/process_usage.hpp"
+#include "dense/blas.hpp"
 #include "inertia/certify.hpp"
 #include "order/weak_diagonal.hpp"
 #include "sparse/scaling.hpp"
@@ -128,6 +129,7 @@ BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& argument
 }  // namespace
 
 int main(int argc, char** argv) {
+  end_blas_threads();  // as the program does
   const BenchArguments arguments = read_arguments(argc, argv);
   const BenchCase bench_case = make_case(arguments);
   ThreadPool pool(arguments.threads);

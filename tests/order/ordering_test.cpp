@@ -92,6 +92,18 @@ TEST(Orderings, SaveMostOfTheWorkOnABoxAndTheBetterOneIsKept) {
   EXPECT_LE(flops(elimination->graph, elimination->vertex_at), std::min(degree, dissection));
 }
 
+/// Dissection would save two fifths of the operations there, and take longer than all the rest.
+TEST(Orderings, WhereThereIsLittleWorkMinimumDegreeWillDo) {
+  const SymmetricMatrix box = test::laplacian(12, 12, 12);
+  const Graph graph = graph_of(box);
+  const auto small = order_equations({&box, {}, true});
+  ASSERT_TRUE(small.ok());
+  EXPECT_EQ(small->dissected, 0);
+  const double degree = flops(graph, *minimum_degree(graph));
+  EXPECT_EQ(flops(small->graph, small->vertex_at), degree);
+  EXPECT_LT(flops(graph, *nested_dissection(graph, 1)), 0.7 * degree);
+}
+
 /// Operations under METIS's own order, the mean of three seeds.
 double flops_of_metis(const Graph& graph) {
   std::vector<idx_t> start(graph.start.begin(), graph.start.end());
