@@ -63,7 +63,7 @@ Result<PartOrder> order_part(const Graph& part, bool other_order, int threads) {
     if (flops < std::min(of_dissection, kSmallFlops)) return best;
     auto order = nested_dissection(part, threads);
     if (!order.ok()) return order.status();
-    if (predicted_flops(part, *order) * (1 - kSaving) < flops) {
+    if (!minimum || predicted_flops(part, *order) * (1 - kSaving) < flops) {
       best = {std::move(*order), true};
     }
   }
