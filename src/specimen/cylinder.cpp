@@ -129,25 +129,13 @@ TrialMotion bulge(const CylinderMesh& mesh) {
 }
 
 ExpectedInertia expected_inertia(const Specimen& specimen, Fault fault) {
-  switch (fault) {
-    case Fault::kFree:
-      return inertia_of(specimen, 0, 6, "a cylinder without supports has its six rigid motions");
-    case Fault::kLoosePart:
-      return inertia_of(specimen, 0, 6,
-                        "a patch of the wall shares no node with the rest: six rigid motions of its own");
-    case Fault::kSoftSpring:
-      return inertia_of(
-          specimen, 0, 0,
-          "the loose patch is held by positive springs, however soft: positive definite, with six "
-          "very small eigenvalues");
-    case Fault::kNegativeSpring:
-      return inertia_of(specimen, 1, 0,
-                        "a positive definite matrix changed by one negative spring (rank one) of twice the "
-                        "Rayleigh quotient of a bulge");
-    default:
-      return inertia_of(specimen, 0, 0,
-                        "a cylinder whose ends stay circles, one of its nodes held along the axis");
-  }
+  return inertia_in_space(
+      specimen, fault,
+      {.sound = "a cylinder whose ends stay circles, one of its nodes held along the axis",
+       .free = "a cylinder without supports has its six rigid motions",
+       .loose = "a patch of the wall shares no node with the rest: six rigid motions of its own",
+       .softly_held = "the loose patch is held by",
+       .motion = "a bulge"});
 }
 
 }  // namespace

@@ -2,12 +2,11 @@
 
 #include <cmath>
 
+#include "specimen/bilinear.hpp"
 #include "specimen/flat_shell.hpp"
 
 namespace stanchion::specimen {
 namespace {
-
-constexpr Table<4, 2> kCorner{{{-1, -1}, {1, -1}, {1, 1}, {-1, 1}}};
 
 /// The five unknowns of the flat shell among the six.
 ElementMatrix<24> widened(const ElementMatrix<20>& shell) {
@@ -22,29 +21,12 @@ ElementMatrix<24> widened(const ElementMatrix<20>& shell) {
   return wide;
 }
 
-/// Calls `visit(n, x, y, area)` at 2 x 2 Gauss points with the corners' bilinear functions and their slopes.
-template <class Visit>
-void at_gauss_points(const Rectangle& shape, const Visit& visit) {
-  for (const auto& p : kGauss2) {
-    for (const auto& q : kGauss2) {
-      std::array<double, 4> n{}, x{}, y{};
-      for (std::size_t a = 0; a < 4; ++a) {
-        const double s = 1 + kCorner[a][0] * p.position, t = 1 + kCorner[a][1] * q.position;
-        n[a] = s * t / 4;
-        x[a] = kCorner[a][0] * t / (2 * shape.length);
-        y[a] = kCorner[a][1] * s / (2 * shape.width);
-      }
-      visit(n, x, y, shape.length * shape.width / 4);
-    }
-  }
-}
-
 }  // namespace
 
 ElementMatrix<24> facet_stiffness(const Rectangle& shape, const Material& material) {
   ElementMatrix<24> k = widened(shell_stiffness(shape, material));
   const double shear = material.youngs_modulus * shape.thickness / (2 * (1 + material.poisson));
-  at_gauss_points(shape, [&](const auto& n, const auto& x, const auto& y, double area) {
+  at_bilinear_points(shape, [&](const auto& n, const auto& x, const auto& y, double area) {
     Table<1, 24> b{};  // rz - (d uy/dx - d ux/dy) / 2
     for (std::size_t a = 0; a < 4; ++a) {
       b[0][6 * a] = y[a] / 2;
@@ -58,7 +40,7 @@ ElementMatrix<24> facet_stiffness(const Rectangle& shape, const Material& materi
 
 ElementMatrix<24> facet_geometric(const Rectangle& shape, double force_x) {
   ElementMatrix<24> g = widened(shell_geometric(shape, {force_x, 0, 0}));
-  at_gauss_points(shape, [&](const auto&, const auto& x, const auto&, double area) {
+  at_bilinear_points(shape, [&](const auto&, const auto& x, const auto&, double area) {
     Table<1, 24> b{};
     for (std::size_t a = 0; a < 4; ++a) b[0][6 * a + 1] = x[a];
     add_gram<1, 24>(g, b, Table<1, 1>{{{force_x}}}, area);

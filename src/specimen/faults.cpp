@@ -68,6 +68,27 @@ void add_negative_spring(Specimen& specimen, const TrialMotion& motion) {
   add_to_diagonal(specimen.stiffness, static_cast<Index>(largest), -2 * energy / (size * size));
 }
 
+ExpectedInertia inertia_in_space(const Specimen& specimen, Fault fault, const FaultWords& words) {
+  switch (fault) {
+    case Fault::kFree:
+      return inertia_of(specimen, 0, 6, words.free);
+    case Fault::kLoosePart:
+      return inertia_of(specimen, 0, 6, words.loose);
+    case Fault::kSoftSpring:
+      return inertia_of(specimen, 0, 0,
+                        words.softly_held +
+                            " positive springs, however soft: positive definite, with six "
+                            "very small eigenvalues");
+    case Fault::kNegativeSpring:
+      return inertia_of(specimen, 1, 0,
+                        "a positive definite matrix changed by one negative spring (rank one) of twice the "
+                        "Rayleigh quotient of " +
+                            words.motion);
+    default:
+      return inertia_of(specimen, 0, 0, words.sound);
+  }
+}
+
 ExpectedInertia inertia_of(const Specimen& specimen, Index negative, Index zero, std::string why) {
   return {negative, zero, specimen.stiffness.rows - negative - zero, std::move(why)};
 }

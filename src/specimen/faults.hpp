@@ -34,6 +34,17 @@ using TrialMotion = std::function<std::array<double, 6>(const Point&)>;
 /// zero.
 void add_negative_spring(Specimen& specimen, const TrialMotion& motion);
 
+/// What makes a specimen definite, and what each fault that it offers does, in the words of `expected`.
+struct FaultWords {
+  std::string sound, free, loose;
+  std::string softly_held = "";  ///< "the loose end is held by"
+  std::string motion = "";       ///< the trial motion of the negative spring: "a half wave"
+};
+
+/// Of a body or structure in space: sound, six rigid motions free, six of a part that is loose or held very
+/// softly, or one negative spring. A hinge is the caller's own.
+ExpectedInertia inertia_in_space(const Specimen& specimen, Fault fault, const FaultWords& words);
+
 /// `n` eigenvalues, of which `negative` and `zero`; the rest positive.
 ExpectedInertia inertia_of(const Specimen& specimen, Index negative, Index zero, std::string why);
 

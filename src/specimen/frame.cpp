@@ -85,29 +85,18 @@ std::vector<Index> cut_roof_corner_off(Model& model, const FrameMesh& mesh) {
 }
 
 ExpectedInertia expected_inertia(const Specimen& specimen, Fault fault) {
-  switch (fault) {
-    case Fault::kFree:
-      return inertia_of(specimen, 0, 6, "a rigid-jointed frame without supports has its six rigid motions");
-    case Fault::kLoosePart:
-      return inertia_of(specimen, 0, 6,
-                        "four roof beams are joined to each other but not to the columns: six rigid motions");
-    case Fault::kHinge:
-      return inertia_of(
-          specimen, 0, 3,
-          "all columns of one storey are pinned at both ends: what is above sways in x and y and "
-          "turns about z");
-    case Fault::kSoftSpring:
-      return inertia_of(
-          specimen, 0, 0,
-          "the loose roof beams lie on positive springs, however soft: positive definite, with six "
-          "very small eigenvalues");
-    case Fault::kNegativeSpring:
-      return inertia_of(specimen, 1, 0,
-                        "a positive definite matrix changed by one negative spring (rank one) of twice the "
-                        "Rayleigh quotient of a sway motion");
-    default:
-      return inertia_of(specimen, 0, 0, "a connected rigid-jointed frame with clamped feet");
+  if (fault == Fault::kHinge) {
+    return inertia_of(specimen, 0, 3,
+                      "all columns of one storey are pinned at both ends: what is above sways in x and y and "
+                      "turns about z");
   }
+  return inertia_in_space(
+      specimen, fault,
+      {.sound = "a connected rigid-jointed frame with clamped feet",
+       .free = "a rigid-jointed frame without supports has its six rigid motions",
+       .loose = "four roof beams are joined to each other but not to the columns: six rigid motions",
+       .softly_held = "the loose roof beams lie on",
+       .motion = "a sway motion"});
 }
 
 }  // namespace

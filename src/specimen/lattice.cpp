@@ -140,19 +140,11 @@ std::vector<Index> cut_cross_beam_off(Model& model, const BridgeMesh& mesh) {
 }
 
 ExpectedInertia expected_inertia(const Specimen& specimen, Fault fault) {
-  switch (fault) {
-    case Fault::kFree:
-      return inertia_of(specimen, 0, 6, "a rigid-jointed bridge without bearings has its six rigid motions");
-    case Fault::kLoosePart:
-      return inertia_of(specimen, 0, 6,
-                        "the cross beam at midspan is joined to nothing: its six rigid motions");
-    case Fault::kNegativeSpring:
-      return inertia_of(specimen, 1, 0,
-                        "a positive definite matrix changed by one negative spring (rank one) of twice the "
-                        "Rayleigh quotient of a sagging motion");
-    default:
-      return inertia_of(specimen, 0, 0, "a connected rigid-jointed bridge on its bearings");
-  }
+  return inertia_in_space(specimen, fault,
+                          {.sound = "a connected rigid-jointed bridge on its bearings",
+                           .free = "a rigid-jointed bridge without bearings has its six rigid motions",
+                           .loose = "the cross beam at midspan is joined to nothing: its six rigid motions",
+                           .motion = "a sagging motion"});
 }
 
 /// The whole bridge sags between its first two piers.

@@ -123,24 +123,13 @@ TrialMotion half_wave(const PlateMesh& mesh) {
 }
 
 ExpectedInertia expected_inertia(const Specimen& specimen, Fault fault) {
-  switch (fault) {
-    case Fault::kFree:
-      return inertia_of(specimen, 0, 6, "a flat plate without supports has its six rigid motions");
-    case Fault::kLoosePart:
-      return inertia_of(specimen, 0, 6,
-                        "a patch of the plate shares no node with the rest: six rigid motions of its own");
-    case Fault::kSoftSpring:
-      return inertia_of(
-          specimen, 0, 0,
-          "the loose patch is held by positive springs, however soft: positive definite, with six "
-          "very small eigenvalues");
-    case Fault::kNegativeSpring:
-      return inertia_of(specimen, 1, 0,
-                        "a positive definite matrix changed by one negative spring (rank one) of twice the "
-                        "Rayleigh quotient of a half wave");
-    default:
-      return inertia_of(specimen, 0, 0, "a plate held along its edges, in its plane by rollers on two sides");
-  }
+  return inertia_in_space(
+      specimen, fault,
+      {.sound = "a plate held along its edges, in its plane by rollers on two sides",
+       .free = "a flat plate without supports has its six rigid motions",
+       .loose = "a patch of the plate shares no node with the rest: six rigid motions of its own",
+       .softly_held = "the loose patch is held by",
+       .motion = "a half wave"});
 }
 
 /// Values of all half-wave pairs (m, n) that `nx`, `ny` elements resolve, of which the spectrum is complete

@@ -1,5 +1,7 @@
 #include "specimen/plate_bending.hpp"
 
+#include "specimen/bilinear.hpp"
+
 namespace stanchion::specimen {
 namespace {
 
@@ -8,8 +10,6 @@ struct Jet {
   double value = 0, x = 0, y = 0, xx = 0, yy = 0, xy = 0;
 };
 using BendingShape = std::array<Jet, 12>;
-
-constexpr Table<4, 2> kCorner{{{-1, -1}, {1, -1}, {1, 1}, {-1, 1}}};
 
 /// Derivatives by the corner's own coordinates u = +-x/a, v = +-y/b (a, b half sides) turned into those by x,
 /// y.

@@ -42,27 +42,17 @@ std::array<double, 6> cantilever_bending(const Point& p) {
 }
 
 ExpectedInertia expected_inertia(const Specimen& specimen, Fault fault) {
-  switch (fault) {
-    case Fault::kFree:
-      return inertia_of(specimen, 0, 6, "an elastic body without supports has its six rigid motions");
-    case Fault::kLoosePart:
-      return inertia_of(specimen, 0, 6,
-                        "the end of the block shares no node with the rest: six rigid motions of its own");
-    case Fault::kHinge:
-      return inertia_of(specimen, 0, 1,
-                        "the end of the block is joined along one straight edge only and turns about it");
-    case Fault::kSoftSpring:
-      return inertia_of(
-          specimen, 0, 0,
-          "the loose end is held by positive springs, however soft: positive definite, with six "
-          "very small eigenvalues");
-    case Fault::kNegativeSpring:
-      return inertia_of(specimen, 1, 0,
-                        "a positive definite matrix changed by one negative spring (rank one) of twice the "
-                        "Rayleigh quotient of a bending motion");
-    default:
-      return inertia_of(specimen, 0, 0, "an elastic body with one face clamped");
+  if (fault == Fault::kHinge) {
+    return inertia_of(specimen, 0, 1,
+                      "the end of the block is joined along one straight edge only and turns about it");
   }
+  return inertia_in_space(
+      specimen, fault,
+      {.sound = "an elastic body with one face clamped",
+       .free = "an elastic body without supports has its six rigid motions",
+       .loose = "the end of the block shares no node with the rest: six rigid motions of its own",
+       .softly_held = "the loose end is held by",
+       .motion = "a bending motion"});
 }
 
 }  // namespace
