@@ -9,11 +9,11 @@
 
 #include "diagnose/diagnosis.hpp"
 #include "diagnose/kept_factor.hpp"
+#include "diagnose/local_motions.hpp"
 #include "diagnose/local_vectors.hpp"
 #include "diagnose/near_zero.hpp"
 #include "diagnose/picture.hpp"
 #include "diagnose/probes.hpp"
-#include "diagnose/repeated_constraints.hpp"
 #include "diagnose/seams.hpp"
 #include "diagnose/structure.hpp"
 #include "diagnose/words.hpp"

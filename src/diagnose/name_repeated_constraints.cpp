@@ -1,5 +1,6 @@
 #include <algorithm>
 #include <map>
+#include <set>
 
 #include "diagnose/naming.hpp"
 #include "diagnose/shares.hpp"
@@ -20,15 +21,14 @@ void add_part(Evidence& e, Index part, const std::vector<const RepeatedConstrain
       share[member->rows[r]] += member->entry[r] * member->entry[r] / direction.count;
   }
   direction.residual = residual;
-  std::vector<Index> rows, nodes;
+  std::vector<Index> rows;
+  std::set<Index> nodes;
   std::vector<double> shares;
   for (const auto& [row, part_of_all] : share) {
     rows.push_back(row);
     shares.push_back(part_of_all);
-    nodes.push_back(e.s.node_of[static_cast<std::size_t>(row)]);
+    nodes.insert(e.s.node_of[static_cast<std::size_t>(row)]);
   }
-  std::sort(nodes.begin(), nodes.end());
-  nodes.erase(std::unique(nodes.begin(), nodes.end()), nodes.end());
   direction.moving_nodes = static_cast<Index>(nodes.size());
   direction.moving_rows = static_cast<Index>(rows.size());
   direction.nodes = ranked(e.s, rows, shares, kShownShares);

@@ -6,7 +6,7 @@
 #include <vector>
 
 #include "diagnose/kept_factor.hpp"
-#include "diagnose/repeated_constraints.hpp"
+#include "diagnose/local_motions.hpp"
 #include "diagnose/subspace.hpp"
 
 namespace stanchion {

@@ -6,8 +6,8 @@
 
 #include "diagnose/constraint_space.hpp"
 #include "diagnose/kept_factor.hpp"
+#include "diagnose/local_motions.hpp"
 #include "diagnose/near_zero.hpp"
-#include "diagnose/repeated_constraints.hpp"
 #include "diagnose/subspace.hpp"
 
 namespace stanchion {

@@ -10,8 +10,6 @@
 namespace stanchion {
 namespace {
 
-/// Bound on ||A_s v||_inf, rows of A_s being about 1: some hundred times the rounding of an assembled entry.
-constexpr double kNodeMotionLimit = 1e-12;
 constexpr Offset kColumnsAPiece = 8192, kNodesAPiece = 2048;
 
 class Finder {
@@ -100,7 +98,7 @@ class Finder {
     }
     if (std::all_of(done.begin(), done.end(), [](char d) { return d != 0; })) return;
     const SmallEigen eigen = small_eigen(block, m);
-    for (std::size_t k = 0; k < n && std::fabs(eigen.values[k]) <= kNodeMotionLimit; ++k) {
+    for (std::size_t k = 0; k < n && std::fabs(eigen.values[k]) <= kLocalMotionLimit; ++k) {
       NodeMotion motion{node, std::vector<double>(n), false};
       for (std::size_t i = 0; i < n; ++i) motion.entry[i] = eigen.vectors[i * n + k];
       found.push_back(std::move(motion));
@@ -156,7 +154,7 @@ class Finder {
     }
     std::vector<NodeMotion> kept;
     for (std::size_t c = 0; c < found_.size(); ++c) {
-      if (worst[c] <= kNodeMotionLimit) kept.push_back(std::move(found_[c]));
+      if (worst[c] <= kLocalMotionLimit) kept.push_back(std::move(found_[c]));
     }
     return kept;
   }
@@ -177,18 +175,6 @@ class Finder {
 std::vector<NodeMotion> find_node_motions(const Structure& structure, const ShiftedMatrix& matrix,
                                           ThreadPool& pool) {
   return Finder(structure, matrix, pool).run();
-}
-
-void remove(const std::vector<NodeMotion>& motions, const Structure& structure, Columns& x) {
-  for (const NodeMotion& motion : motions) {
-    const Index* rows =
-        structure.rows_of_node.data() + structure.first_row[static_cast<std::size_t>(motion.node)];
-    for (Index c = 0; c < x.count; ++c) {
-      double along = 0;
-      for (std::size_t r = 0; r < motion.entry.size(); ++r) along += motion.entry[r] * x.row(rows[r])[c];
-      for (std::size_t r = 0; r < motion.entry.size(); ++r) x.row(rows[r])[c] -= along * motion.entry[r];
-    }
-  }
 }
 
 }  // namespace stanchion

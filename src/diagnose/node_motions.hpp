@@ -4,12 +4,15 @@
 #include <vector>
 
 #include "base/threads.hpp"
-#include "diagnose/columns.hpp"
 #include "diagnose/structure.hpp"
 
 namespace stanchion {
 
-/// A unit vector on the rows of one node with A_s v = 0 to `kNodeMotionLimit`.
+/// Bound on ||A_s v||_inf of a null vector read off the matrix, rows of A_s being about 1: some hundred times
+/// the rounding of an assembled entry.
+inline constexpr double kLocalMotionLimit = 1e-12;
+
+/// A unit vector on the rows of one node with A_s v = 0 to `kLocalMotionLimit`.
 struct NodeMotion {
   Index node = 0;
   std::vector<double> entry;  ///< by the node's rows, in the order of Structure::rows_of_node
@@ -20,8 +23,5 @@ struct NodeMotion {
 /// block. Multipliers are left out: their diagonal is rightly zero.
 std::vector<NodeMotion> find_node_motions(const Structure& structure, const ShiftedMatrix& matrix,
                                           ThreadPool& pool);
-
-/// x := x less its parts along the motions.
-void remove(const std::vector<NodeMotion>& motions, const Structure& structure, Columns& x);
 
 }  // namespace stanchion

@@ -8,8 +8,6 @@
 namespace stanchion {
 namespace {
 
-/// Bound on ||A_s v||_inf, rows of A_s being about 1: some hundred times the rounding of an assembled entry.
-constexpr double kLimit = 1e-12;
 /// Columns are in proportion when their entries, over the first of each, agree to so much of the whole.
 constexpr double kSteps = 0x1p40;
 constexpr std::size_t kMostTogether = 64;
@@ -134,7 +132,7 @@ class Finder {
       found.entry[k] = before / scale;
       before = with;
       found.residual = residual(group, found.entry);
-      if (found.residual <= kLimit) found_.push_back(std::move(found));
+      if (found.residual <= kLocalMotionLimit) found_.push_back(std::move(found));
     }
   }
 
@@ -162,26 +160,6 @@ std::vector<RepeatedConstraint> find_repeated_constraints(const Structure& struc
                                                           const ShiftedMatrix& matrix,
                                                           const std::vector<NodeMotion>& motions) {
   return Finder(structure, matrix).run(motions);
-}
-
-LocalMotions find_local_motions(const Structure& structure, const ShiftedMatrix& matrix, ThreadPool& pool) {
-  LocalMotions motions;
-  motions.of_nodes = find_node_motions(structure, matrix, pool);
-  motions.of_constraints = find_repeated_constraints(structure, matrix, motions.of_nodes);
-  return motions;
-}
-
-void remove(const LocalMotions& motions, const Structure& structure, Columns& x) {
-  remove(motions.of_nodes, structure, x);
-  for (const RepeatedConstraint& motion : motions.of_constraints) {
-    for (Index c = 0; c < x.count; ++c) {
-      double along = 0;
-      for (std::size_t r = 0; r < motion.entry.size(); ++r)
-        along += motion.entry[r] * x.row(motion.rows[r])[c];
-      for (std::size_t r = 0; r < motion.entry.size(); ++r)
-        x.row(motion.rows[r])[c] -= along * motion.entry[r];
-    }
-  }
 }
 
 }  // namespace stanchion

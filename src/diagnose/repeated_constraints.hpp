@@ -3,8 +3,6 @@
 
 #include <vector>
 
-#include "base/threads.hpp"
-#include "diagnose/columns.hpp"
 #include "diagnose/node_motions.hpp"
 #include "diagnose/structure.hpp"
 
@@ -25,18 +23,5 @@ struct RepeatedConstraint {
 std::vector<RepeatedConstraint> find_repeated_constraints(const Structure& structure,
                                                           const ShiftedMatrix& matrix,
                                                           const std::vector<NodeMotion>& motions);
-
-/// Null vectors of a few rows each, read off the matrix; mutually orthogonal.
-struct LocalMotions {
-  std::vector<NodeMotion> of_nodes;
-  std::vector<RepeatedConstraint> of_constraints;
-
-  Index count() const { return static_cast<Index>(of_nodes.size() + of_constraints.size()); }
-};
-
-LocalMotions find_local_motions(const Structure& structure, const ShiftedMatrix& matrix, ThreadPool& pool);
-
-/// x := x less its parts along the motions.
-void remove(const LocalMotions& motions, const Structure& structure, Columns& x);
 
 }  // namespace stanchion
