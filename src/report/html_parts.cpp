@@ -100,8 +100,9 @@ std::string figure_of(const LocateOutcome& located, const Direction& direction,
     caption += fmt::format(" Of {} nodes one in every few pixels is drawn.",
                            grouped(static_cast<Offset>(located.picture.node.size())));
   if (!drawing.close_up.empty())
-    caption += fmt::format(" Beside it, or below: close up on node {}, with node numbers.",
-                           located.picture.node[marks.front().node]);
+    caption += fmt::format(" Beside it, or below: close up on node {}, with node numbers{}.",
+                           located.picture.node[marks.front().node],
+                           drawing.without_number == 0 ? "" : " as far as there is room");
   return fmt::format("<figure><div class=\"plates\">{}{}</div><figcaption>{}</figcaption></figure>\n",
                      drawing.overview, drawing.close_up, flowing(caption));
 }

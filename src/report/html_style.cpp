@@ -69,8 +69,9 @@ svg text { fill: var(--ink); font: 12px system-ui, "Segoe UI", "DejaVu Sans", sa
 .v-ghost { fill: none; stroke: var(--orange); stroke-width: 2; stroke-linecap: round; opacity: .7; }
 .v-arrow { fill: none; stroke: var(--orange); stroke-width: 1.9; stroke-linecap: round; stroke-linejoin: round; }
 .v-ring { fill: none; stroke: var(--ring); stroke-width: 2.4; } .v-lead { stroke: var(--ring); fill: none; stroke-width: 1.1; }
+.v-tie { stroke: var(--soft); fill: none; stroke-width: .9; }
 text.v-label { font-weight: 650; font-size: 13px; fill: var(--ring); paint-order: stroke; stroke: var(--tint); stroke-width: 4px; }
-text.v-number { font-size: 11.5px; paint-order: stroke; stroke: var(--tint); stroke-width: 3px; }
+text.v-number { font-size: 13px; paint-order: stroke; stroke: var(--tint); stroke-width: 3px; }
 .v-triad path, .v-bar path { stroke: var(--soft); fill: none; stroke-width: 1.4; } .v-triad text, .v-bar text { fill: var(--soft); font-size: 11px; }
 .v-field { fill: none; stroke-width: 3.4; stroke-linecap: round; }
 .v-0 { stroke: var(--f0); } .v-1 { stroke: var(--f1); } .v-2 { stroke: var(--f2); } .v-3 { stroke: var(--f3); } .v-4 { stroke: var(--f4); } .v-5 { stroke: var(--f5); }

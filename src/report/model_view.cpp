@@ -7,13 +7,19 @@
 #include <numeric>
 #include <unordered_set>
 
+#include "report/label_layout.hpp"
 #include "report/markup.hpp"
 
 namespace stanchion {
 namespace {
 
 constexpr double kWidth = 640, kHeight = 400, kMargin = 34;
+constexpr double kTall = kHeight + 32;  ///< with the strip below that holds the scale
 constexpr double kCloseWidth = 340;
+constexpr double kRing = 6.5, kCloseRing = 10, kNearDot = 5;
+// Sizes of text as in the style of the page. What a narrow window shows larger is placed for that.
+constexpr double kLargeText = 20, kLargeLine = 21, kLargeSmall = 18;
+constexpr double kMarkText = 13, kNumberText = 13, kNumberLine = 15;
 constexpr double kMotion = 0.11;                ///< of the model's size, drawn length of the largest motion
 constexpr double kCloseMotion = 0.32;           ///< of the close-up's radius
 constexpr double kCell = 2.6, kLinkCell = 2.0;  ///< pixels that hold one dot, or one end of a line
@@ -41,7 +47,7 @@ class Drawer {
       whole.size_ = size_;
       drawing.overview = whole.overview(drawing);
     }
-    if (!marks_.empty()) drawing.close_up = close_up();
+    if (!marks_.empty()) drawing.close_up = close_up(drawing);
     return drawing;
   }
 
@@ -74,7 +80,7 @@ class Drawer {
 
   static std::string open(double width, const std::string& label) {
     return fmt::format("<svg class=\"view\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"{}\">\n",
-                       width, kHeight, escaped(label));
+                       width, kTall, escaped(label));
   }
 
   std::string overview(ModelDrawing& drawing) const {
@@ -90,9 +96,12 @@ class Drawer {
     svg +=
         lines(to, length, "v-moved", [this](std::size_t a, std::size_t b) { return moves(a) || moves(b); });
     if (picture_.links.empty()) svg += moved_dots(to, length);
-    svg += arrows(to, length);
-    svg += labels(to, kWidth);
-    svg += triad();
+    LabelLayout layout({4, 4, kWidth - 4, kHeight});
+    svg += arrows(to, length, layout);
+    for (const Mark& mark : marks_)
+      layout.keep_clear(Box::around(to.at(picture_.place[mark.node]), kRing + 1, kRing + 1));
+    svg += triad(to, layout);
+    svg += labels(to, layout);
     svg += scale_bar(to, kWidth);
     return svg + "</svg>\n";
   }
@@ -157,7 +166,7 @@ class Drawer {
   }
 
   /// A few arrows, spread over the page rather than over the numbering.
-  std::string arrows(const Projection& to, double length) const {
+  std::string arrows(const Projection& to, double length, LabelLayout& layout) const {
     if (shape_.empty()) return "";
     std::vector<std::size_t> order;
     for (std::size_t node = 0; node < picture_.place.size(); ++node) {
@@ -173,9 +182,11 @@ class Drawer {
         return std::hypot(t.x - p.x, t.y - p.y) < kApart;
       });
       if (near) continue;
-      const std::string one = arrow(p, to.at(moved(node, length)));
+      const Point q = to.at(moved(node, length));
+      const std::string one = arrow(p, q);
       if (one.empty()) continue;
       path += one;
+      layout.rather_clear(p, q, 5);
       taken.push_back(p);
       if (taken.size() == kMostArrows) break;
     }
@@ -187,39 +198,89 @@ class Drawer {
     return u[0] * u[0] + u[1] * u[1] + u[2] * u[2];
   }
 
-  std::string labels(const Projection& to, double width) const {
+  /// The ring and name of every mark, with a line from one to the other where they are apart.
+  std::string labels(const Projection& to, LabelLayout& layout) const {
     std::string svg;
-    double last_y = -100;
-    for (std::size_t k = 0; k < marks_.size(); ++k) {
-      const Point p = to.at(picture_.place[marks_[k].node]);
-      const bool right = p.x < width * 0.62;
-      double y = p.y - 14;
-      if (std::fabs(y - last_y) < 16) y = last_y + 17;
-      y = std::clamp(y, 16.0, kHeight - 12);
-      last_y = y;
-      const double x = right ? p.x + 22 : p.x - 22;
-      svg += fmt::format(
-          "<circle class=\"v-ring\" cx=\"{:.1f}\" cy=\"{:.1f}\" r=\"6.5\"/>"
-          "<path class=\"v-lead\" d=\"M{:.1f} {:.1f}L{:.1f} {:.1f}\"/>"
-          "<text class=\"v-label\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"{}\">{}</text>\n",
-          p.x, p.y, right ? p.x + 5 : p.x - 5, p.y - 4, right ? x - 3 : x + 3, y - 4, x, y,
-          right ? "start" : "end", escaped(marks_[k].text));
+    for (const Mark& mark : marks_) {
+      const Point p = to.at(picture_.place[mark.node]);
+      svg += ring(p, kRing);
+      const std::string text = shortened(mark.text, 0.4 * kWidth, kLargeText, true);
+      const double width = text_width(text, kLargeText, true);
+      if (const auto label = layout.place_somewhere(p, kRing, width, kLargeLine))
+        svg += label_text(*label, "v-label", "v-lead", 5, text, mark.text);
     }
     return svg;
   }
 
-  std::string triad() const {
+  static std::string ring(const Point& p, double radius) {
+    return fmt::format("<circle class=\"v-ring\" cx=\"{:.1f}\" cy=\"{:.1f}\" r=\"{:.1f}\"/>\n", p.x, p.y,
+                       radius);
+  }
+
+  static std::string label_text(const PlacedLabel& label, const char* kind, const char* line,
+                                double below_middle, const std::string& text, const std::string& whole) {
+    std::string svg;
+    if (label.led)
+      svg += fmt::format("<path class=\"{}\" d=\"M{:.1f} {:.1f}L{:.1f} {:.1f}\"/>", line, label.from.x,
+                         label.from.y, label.to.x, label.to.y);
+    return svg + fmt::format("<text class=\"{}\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"{}\">{}{}</text>\n",
+                             kind,
+                             label.side > 0   ? label.box.left
+                             : label.side < 0 ? label.box.right
+                                              : (label.box.left + label.box.right) / 2,
+                             (label.box.top + label.box.bottom) / 2 + below_middle,
+                             label.side > 0   ? "start"
+                             : label.side < 0 ? "end"
+                                              : "middle",
+                             escaped(text), text == whole ? "" : "<title>" + escaped(whole) + "</title>");
+  }
+
+  /// In the corner that holds no mark and the fewest dots.
+  std::string triad(const Projection& to, LabelLayout& layout) const {
+    constexpr double kHalf = 40, kArm = 20;
+    const Point corners[] = {{kHalf, kTall - kHalf}, {kHalf, kHalf}, {kWidth - kHalf, kHalf}};
+    const Point* corner = corners;
+    double least = -1;
+    for (const Point& one : corners) {
+      const Box box = Box::around(one, kHalf, kHalf);
+      double hidden = 0;
+      for (const Mark& mark : marks_) {
+        if (Box::around(to.at(picture_.place[mark.node]), kRing + 2, kRing + 2).meets(box)) hidden += 1e9;
+      }
+      for (const Triple& place : picture_.place) {
+        const Point p = to.at(place);
+        if (Box{p.x, p.y, p.x, p.y}.meets(box)) hidden += 1;
+      }
+      if (least >= 0 && hidden >= least) continue;
+      least = hidden;
+      corner = &one;
+    }
     std::string svg = "<g class=\"v-triad\">";
+    LabelLayout letters(Box::around(*corner, kHalf, kHalf));
     const char* names[] = {"x", "y", "z"};
     for (std::size_t d = 0; d < 3; ++d) {
-      const double x = view_.right[d], y = view_.up[d];
-      if (std::hypot(x, y) < 0.12) continue;
-      svg += fmt::format("<path d=\"M34 {:.0f}l{:.1f} {:.1f}\"/><text x=\"{:.1f}\" y=\"{:.1f}\">{}</text>",
-                         kHeight - 34, 20 * x, -20 * y, 34 + 28 * x - 3, kHeight - 34 - 28 * y + 4, names[d]);
+      const Point arm{kArm * view_.right[d], -kArm * view_.up[d]};
+      if (std::hypot(arm.x, arm.y) < 2.4) continue;
+      letters.rather_clear(*corner, {corner->x + arm.x, corner->y + arm.y}, 3);
+      svg += fmt::format("<path d=\"M{:.0f} {:.0f}l{:.1f} {:.1f}\"/>", corner->x, corner->y, arm.x, arm.y);
     }
+    for (std::size_t d = 0; d < 3; ++d) {
+      const Point arm{kArm * view_.right[d], -kArm * view_.up[d]};
+      const double length = std::hypot(arm.x, arm.y);
+      if (length < 2.4) continue;
+      const double width = text_width(names[d], kLargeSmall, false);
+      const auto label = letters.place({corner->x + arm.x, corner->y + arm.y}, 0, width, kLargeSmall, 12,
+                                       {4 * arm.x / length, 4 * arm.y / length});
+      if (!label) continue;
+      svg += fmt::format("<text x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"middle\">{}</text>",
+                         (label->box.left + label->box.right) / 2,
+                         (label->box.top + label->box.bottom) / 2 + 4, names[d]);
+    }
+    layout.keep_clear(Box::around(*corner, kHalf, kHalf));
     return svg + "</g>\n";
   }
 
+  /// Below the drawing, where nothing else is.
   static std::string scale_bar(const Projection& to, double width) {
     const double wanted = 90 / to.scale(), power = std::pow(10, std::floor(std::log10(wanted)));
     const double length = (wanted / power >= 5 ? 5 : wanted / power >= 2 ? 2 : 1) * power;
@@ -227,11 +288,11 @@ class Drawer {
     return fmt::format(
         "<g class=\"v-bar\"><path d=\"M{:.1f} {:.0f}v6h{:.1f}v-6\"/><text x=\"{:.1f}\" y=\"{:.0f}\" "
         "text-anchor=\"end\">{:.4g} in the unit of the coordinates</text></g>\n",
-        width - 14 - pixels, kHeight - 18, pixels, width - 14, kHeight - 22, length);
+        width - 14 - pixels, kTall - 14, pixels, width - 14, kTall - 18, length);
   }
 
   /// The first mark's node with its nearest neighbours, their numbers, and the motion once more.
-  std::string close_up() const {
+  std::string close_up(ModelDrawing& drawing) const {
     const std::size_t centre = marks_.front().node;
     const Triple& c = picture_.place[centre];
     const auto distance = [&](std::size_t node) {
@@ -262,41 +323,77 @@ class Drawer {
     svg += lines(to, 0, "v-link v-near", both);
     svg += lines(to, length, "v-moved",
                  [&](std::size_t a, std::size_t b) { return both(a, b) && (moves(a) || moves(b)); });
+    LabelLayout layout({4, 4, kCloseWidth - 4, kHeight});
+    for (const auto& [a, b] : picture_.links) {
+      const auto i = static_cast<std::size_t>(a), j = static_cast<std::size_t>(b);
+      if (both(i, j)) layout.rather_clear(to.at(picture_.place[i]), to.at(picture_.place[j]), 1.5);
+    }
     std::string still, moving, path;
     for (const std::size_t node : near) {
       const Point p = to.at(picture_.place[node]);
       (moves(node) ? moving : still) += fmt::format("M{:.1f} {:.1f}h0", p.x, p.y);
-      if (moves(node)) path += arrow(p, to.at(moved(node, length)));
+      layout.rather_clear(p, kNearDot, 30);
+      if (!moves(node)) continue;
+      const Point q = to.at(moved(node, length));
+      path += arrow(p, q);
+      layout.rather_clear(p, q, 5);
     }
     if (!still.empty()) svg += fmt::format("<path class=\"v-dot v-near\" d=\"{}\"/>\n", still);
     if (!moving.empty()) svg += fmt::format("<path class=\"v-part v-near\" d=\"{}\"/>\n", moving);
     if (!path.empty()) svg += fmt::format("<path class=\"v-arrow\" d=\"{}\"/>\n", path);
-    svg += numbers(to, near);
-    const Point p = to.at(c);
-    svg += fmt::format("<circle class=\"v-ring\" cx=\"{:.1f}\" cy=\"{:.1f}\" r=\"10\"/>\n", p.x, p.y);
+    svg += numbers(to, near, layout, drawing);
     svg += scale_bar(to, kCloseWidth);
     return svg + "</svg>\n";
   }
 
-  /// Node numbers where they do not fall on one another; nodes at one place share a line.
-  std::string numbers(const Projection& to, const std::vector<std::size_t>& near) const {
-    std::string svg;
-    std::vector<Point> taken;
-    for (std::size_t k = 0; k < near.size(); ++k) {
-      const Point p = to.at(picture_.place[near[k]]);
-      std::string text = std::to_string(picture_.node[near[k]]);
-      for (std::size_t j = k + 1; j < near.size(); ++j) {
-        const Point q = to.at(picture_.place[near[j]]);
-        if (std::hypot(p.x - q.x, p.y - q.y) < 0.5 && text.size() < 24)
-          text += ", " + std::to_string(picture_.node[near[j]]);
-      }
-      const bool crowded = std::any_of(taken.begin(), taken.end(), [&](const Point& t) {
-        return std::fabs(t.x - p.x) < 7.0 * static_cast<double>(text.size()) && std::fabs(t.y - p.y) < 13;
+  /// Rings and names of the marks, then the numbers of their neighbours as far as there is room; nodes that
+  /// fall on one another share a label.
+  std::string numbers(const Projection& to, const std::vector<std::size_t>& near, LabelLayout& layout,
+                      ModelDrawing& drawing) const {
+    struct Spot {
+      Point at;
+      std::string text;
+      bool marked = false;
+      std::size_t nodes = 0;
+    };
+    const auto mark_of = [this](std::size_t node) {
+      return std::find_if(marks_.begin(), marks_.end(), [&](const Mark& mark) { return mark.node == node; });
+    };
+    std::vector<std::size_t> order = near;
+    std::stable_partition(order.begin(), order.end(),
+                          [&](std::size_t node) { return mark_of(node) != marks_.end(); });
+    std::vector<Spot> spots;
+    for (const std::size_t node : order) {
+      const Point p = to.at(picture_.place[node]);
+      const auto mark = mark_of(node);
+      const std::string text = mark != marks_.end() ? mark->text : std::to_string(picture_.node[node]);
+      const auto same = std::find_if(spots.begin(), spots.end(), [&](const Spot& spot) {
+        return std::hypot(p.x - spot.at.x, p.y - spot.at.y) < 0.5;
       });
-      if (crowded) continue;
-      taken.push_back(p);
-      svg += fmt::format("<text class=\"v-number\" x=\"{:.1f}\" y=\"{:.1f}\">{}</text>\n", p.x + 9, p.y + 14,
-                         text);
+      if (same == spots.end()) {
+        spots.push_back({p, text, mark != marks_.end(), 1});
+      } else {
+        same->text += ", " + text;
+        ++same->nodes;
+      }
+    }
+    std::string svg;
+    for (const Spot& spot : spots) {
+      if (!spot.marked) continue;
+      layout.keep_clear(Box::around(spot.at, kCloseRing, kCloseRing));
+      svg += ring(spot.at, kCloseRing);
+    }
+    for (const Spot& spot : spots) {
+      const double size = spot.marked ? kMarkText : kNumberText;
+      const std::string text = shortened(spot.text, 0.6 * kCloseWidth, size, spot.marked);
+      const double width = text_width(text, size, spot.marked);
+      const auto label = spot.marked ? layout.place_somewhere(spot.at, kCloseRing, width, kNumberLine)
+                                     : layout.place(spot.at, kNearDot, width, kNumberLine, 70);
+      if (label)
+        svg += label_text(*label, spot.marked ? "v-label" : "v-number", spot.marked ? "v-lead" : "v-tie", 4.5,
+                          text, spot.text);
+      else
+        drawing.without_number += spot.nodes;
     }
     return svg;
   }

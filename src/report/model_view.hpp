@@ -22,6 +22,7 @@ struct ModelDrawing {
   double exaggeration = 0;         ///< drawn length of the largest motion over the model's size
   ViewAxes view;
   std::size_t drawn = 0, left_out = 0;  ///< nodes of the cloud that were drawn and thinned out
+  std::size_t without_number = 0;       ///< nodes of the close-up whose numbers have no room
 };
 
 /// A model thinned to what a page shows (reduce_model), for the overview of a large one.

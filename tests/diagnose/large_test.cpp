@@ -101,8 +101,9 @@ TEST_P(LargeCombined, EveryFaultIsNamedApartWithItsNodes) {
 // About kLarge in all.
 INSTANTIATE_TEST_SUITE_P(Specimens, LargeCombined,
                          testing::Values(CombinedCase{"solid", 49000}, CombinedCase{"plate", 66000},
-                                         CombinedCase{"frame", 49000}, CombinedCase{"lattice", 99000},
-                                         CombinedCase{"saddle", 99000}, CombinedCase{"laplace", 99000}),
+                                         CombinedCase{"cylinder", 66000}, CombinedCase{"frame", 49000},
+                                         CombinedCase{"lattice", 99000}, CombinedCase{"saddle", 99000},
+                                         CombinedCase{"laplace", 99000}),
                          [](const auto& given) { return std::string(given.param.name); });
 
 }  // namespace
