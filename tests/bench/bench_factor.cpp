@@ -3,6 +3,7 @@
 #include <cstdlib>
 
 #include "base/clock.hpp"
+#include "base/large_heap.hpp"
 #include "bench/bench_record.hpp"
 #include "bench/process_usage.hpp"
 #include "dense/blas.hpp"
@@ -127,6 +128,12 @@ BenchRecord run_once(const BenchCase& bench_case, const BenchArguments& argument
 }
 
 }  // namespace
+
+bool stanchion::wants_large_heap(int argc, char** argv) {
+  constexpr int kWorthBeginningAnew =
+      30000;  // equations; from about there the files are as large as the program asks
+  return argc > 2 && std::atoi(argv[2]) >= kWorthBeginningAnew;
+}
 
 int main(int argc, char** argv) {
   end_blas_threads();  // as the program does
