@@ -177,6 +177,7 @@ struct AuditOutcome {
   std::vector<AuditGap> gaps;
   CountedRange range;
   Index listed = 0;   ///< values in the range
+  std::vector<double> values;  ///< those, as shifts of the pencil, ascending
   Index outside = 0;  ///< values left out, outside the range asked
   std::string proof;  ///< "counts": every stretch between two counts holds as many as are listed
   std::vector<CriticalValue> missing;  ///< with find_missing: brackets of what the gaps hold

@@ -87,9 +87,11 @@ class Audit {
       span.low = std::max(span.low, from_);
       span.high = std::min(span.high, to_);
       spans_[span.members.front()] = span;
+      answer_.values.push_back(value);
       inside.push_back(std::move(span));
     }
     answer_.listed = static_cast<Index>(inside.size());
+    std::sort(answer_.values.begin(), answer_.values.end());
     clusters_ = clusters_of(std::move(inside));
   }
 

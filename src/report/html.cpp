@@ -5,6 +5,7 @@
 #include <algorithm>
 
 #include "model/version.hpp"
+#include "report/answer_svg.hpp"
 #include "report/cause_words.hpp"
 #include "report/html_parts.hpp"
 #include "report/html_style.hpp"
@@ -126,8 +127,10 @@ std::string question_to_html(const Outcome& outcome) {
   return band("Question", "<dl>\n" + rows + "</dl>\n");
 }
 
-/// The steps of the counts, where there are several.
-std::string staircase(const Outcome& outcome) {
+/// The answer as a chart, where it has one.
+std::string chart_of(const Outcome& outcome) {
+  if (outcome.audit) return audit_svg(outcome);
+  if (outcome.path) return path_svg(outcome);
   if (outcome.sweep) return staircase_svg(outcome, false);
   if (!outcome.count || outcome.count->counts.size() < 2) return "";
   std::vector<std::pair<double, Index>> steps;
@@ -234,7 +237,7 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   if (outcome.located) html += band("Where and why", causes_to_html(*outcome.located));
   // What follows up to the first title belongs to the answer; titles open sections of their own.
   std::string heading = "Answer";
-  std::string chart = staircase(outcome);
+  std::string chart = chart_of(outcome);
   if (!chart.empty()) chart = "<div class=\"wide\">" + chart + "</div>\n";
   for (std::size_t k = lead; k < blocks.size();) {
     std::size_t end = k;

@@ -61,7 +61,10 @@ svg.view { width: 100%; height: auto; display: block; background: var(--tint); b
 svg.chart { width: 100%; max-width: 46rem; height: auto; display: block; }
 svg text { fill: var(--ink); font: 12px system-ui, "Segoe UI", "DejaVu Sans", sans-serif; }
 .s-ground { fill: var(--sheet); } .s-rule { stroke: var(--line); } .s-axis { stroke: var(--soft); } .s-step { stroke: var(--blue); }
-.s-point { fill: var(--blue); } .s-jump { stroke: var(--open); }
+.s-point { fill: var(--blue); } .s-jump { stroke: var(--open); } .chart .s-step { stroke-width: 2.5; }
+.c-more { stroke: var(--open); } .c-fewer { stroke: var(--ring); } .c-cross { stroke: var(--ring); }
+.c-found { fill: var(--sheet); stroke: var(--heed); stroke-width: 2; } .c-wrong { fill: none; stroke: var(--ring); stroke-width: 2.6; }
+.c-open { fill: var(--sheet); stroke: var(--open); stroke-dasharray: 3 2; } svg text.c-strong { font-weight: 650; font-size: 13px; }
 .v-link { fill: none; stroke: var(--soft); stroke-width: .7; opacity: .5; } .v-link.v-near { stroke-width: 1.3; opacity: .8; }
 .v-dot { fill: none; stroke: var(--soft); stroke-width: 2; stroke-linecap: round; opacity: .6; } .v-dot.v-near { stroke-width: 6; }
 .v-part { fill: none; stroke: var(--blue); stroke-width: 3.2; stroke-linecap: round; } .v-part.v-near { stroke-width: 8; }
@@ -85,7 +88,7 @@ footer { border-top: 3px double var(--line); margin-top: .8rem; padding-top: .7r
   main { padding: 1.2rem 1.1rem 2rem; }
   section.band { grid-template-columns: minmax(0, 1fr); } section.band > h2 { margin-bottom: .5rem; }
   .verdict { grid-template-columns: 2.8rem 1fr; gap: 0 .9rem; } .verdict svg { width: 2.8rem; height: 2.8rem; } .verdict .lead { font-size: 1.28rem; }
-  table { display: block; overflow-x: auto; } .wide { overflow-x: auto; } .wide > svg.chart { min-width: 34rem; }
+  table { display: block; overflow-x: auto; } .wide { overflow-x: auto; } .wide > svg { min-width: 40rem; }
   td.digest { min-width: 17rem; }
   .plates, .cause .columns { grid-template-columns: minmax(0, 1fr); } dl { grid-template-columns: 1fr; gap: 0; } dd { margin-bottom: .45rem; }
 }

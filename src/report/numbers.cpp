@@ -3,6 +3,7 @@
 #include <fmt/format.h>
 
 #include <cmath>
+#include <cstdlib>
 
 namespace stanchion {
 namespace {
@@ -17,6 +18,17 @@ std::string with_prefix(double number, const char* unit) {
   }
   const int decimals = prefix > 0 && number < 9.95 ? 1 : 0;
   return fmt::format("{:.{}f} {}{}", number, decimals, kPrefixes[prefix], unit);
+}
+
+std::string rounded_towards(double number, int digits, double direction) {
+  const double size = std::fabs(number);
+  std::string text = fmt::format("{:.{}g}", number, digits);
+  if (!(size > 0) || !std::isfinite(number) || digits > 15) return digits > 15 ? exact(number) : text;
+  // Of the last digit one more where the nearest number of so many digits lies on the other side.
+  const double unit = std::pow(10.0, std::floor(std::log10(size)) - digits + 1);
+  for (int more = 1; direction * (std::strtod(text.c_str(), nullptr) - number) < 0 && more < 4; ++more)
+    text = fmt::format("{:.{}g}", number + direction * more * unit / 2, digits);
+  return direction * (std::strtod(text.c_str(), nullptr) - number) < 0 ? exact(number) : text;
 }
 
 }  // namespace
@@ -37,6 +49,14 @@ std::string rounded(double number) {
 
 std::string exact(double number) {
   return fmt::format("{}", number);
+}
+
+std::string rounded_down(double number, int digits) {
+  return rounded_towards(number, digits, -1);
+}
+
+std::string rounded_up(double number, int digits) {
+  return rounded_towards(number, digits, 1);
 }
 
 std::string bytes_in_words(Offset bytes) {

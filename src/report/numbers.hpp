@@ -16,6 +16,10 @@ std::string rounded(double number);
 /// The shortest decimal that reads back to the same double: for numbers the user gave.
 std::string exact(double number);
 
+/// So many significant digits of it, rounded down or up: what was a bound stays one.
+std::string rounded_down(double number, int digits);
+std::string rounded_up(double number, int digits);
+
 /// 1300000000 -> "1.3 GB" (powers of 1000).
 std::string bytes_in_words(Offset bytes);
 

@@ -6,6 +6,8 @@
 #include <cmath>
 #include <vector>
 
+#include "report/chart.hpp"
+#include "report/markup.hpp"
 #include "report/numbers.hpp"
 #include "report/staircase_points.hpp"
 
@@ -13,36 +15,6 @@ namespace stanchion {
 namespace {
 
 constexpr double kWidth = 760, kHeight = 380, kLeft = 70, kRight = 24, kTop = 24, kBottom = 62;
-
-std::string escaped(const std::string& text) {
-  std::string safe;
-  for (const char c : text) {
-    switch (c) {
-      case '&':
-        safe += "&amp;";
-        break;
-      case '<':
-        safe += "&lt;";
-        break;
-      case '>':
-        safe += "&gt;";
-        break;
-      case '"':
-        safe += "&quot;";
-        break;
-      default:
-        safe += c;
-    }
-  }
-  return safe;
-}
-
-/// 1, 2 or 5 times a power of ten, so that about `many` of them span `range`.
-double tick_step(double range, int many) {
-  const double raw = range / many, power = std::pow(10.0, std::floor(std::log10(raw)));
-  const double part = raw / power;
-  return power * (part <= 1 ? 1 : part <= 2 ? 2 : part <= 5 ? 5 : 10);
-}
 
 class StaircasePicture {
  public:

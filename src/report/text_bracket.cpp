@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <utility>
 
 #include "model/frequency.hpp"
 #include "report/numbers.hpp"
@@ -30,11 +31,20 @@ std::string range_in_words(const CountedRange& range, bool hertz) {
 }
 
 /// The digits that the two ends of an interval share, and one or two more.
+int shared_digits(double value, double low, double high) {
+  return std::clamp(static_cast<int>(std::ceil(std::log10(std::fabs(value) / (high - low)))) + 1, 2, 17);
+}
+
 std::string digits_of(double value, double low, double high) {
-  const double width = high - low;
-  if (!(width > 0) || value == 0) return fmt::format("{:.10g}", value);
-  const int digits = std::clamp(static_cast<int>(std::ceil(std::log10(std::fabs(value) / width))) + 1, 2, 17);
-  return fmt::format("{:.{}g}", value, digits);
+  if (!(high > low) || value == 0) return fmt::format("{:.10g}", value);
+  return fmt::format("{:.{}g}", value, shared_digits(value, low, high));
+}
+
+/// The ends of an interval, rounded outwards to what its width makes worth reading.
+std::pair<std::string, std::string> ends_of(double value, double low, double high) {
+  if (!(high > low) || value == 0) return {exact(low), exact(high)};
+  const int digits = std::max(shared_digits(value, low, high) + 1, 4);
+  return {rounded_down(low, digits), rounded_up(high, digits)};
 }
 
 std::string proof_in_words(const CriticalValue& value) {
@@ -76,8 +86,9 @@ void write_values(Page& page, const std::vector<CriticalValue>& values, bool her
   if (hertz) heading.insert(heading.begin(), "Hz");
   rows.push_back(heading);
   for (const CriticalValue& value : values) {
+    const auto [low, high] = ends_of(value.value, value.low, value.high);
     std::vector<std::string> row{
-        digits_of(value.value, value.low, value.high), exact(value.low), exact(value.high),
+        digits_of(value.value, value.low, value.high), low, high,
         grouped(value.multiplicity) + (value.rigid_body ? ", rigid body or mechanism" : "")};
     if (!one) row.push_back(proof_in_words(value));
     if (hertz) {

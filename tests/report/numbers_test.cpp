@@ -2,7 +2,9 @@
 
 #include <gtest/gtest.h>
 
+#include <cmath>
 #include <cstdlib>
+#include <random>
 
 namespace stanchion {
 namespace {
@@ -20,6 +22,29 @@ TEST(Numbers, ExactReadsBackToTheSameDouble) {
     EXPECT_EQ(std::strtod(exact(number).c_str(), nullptr), number);
   }
   EXPECT_EQ(exact(1.5), "1.5");
+}
+
+TEST(Numbers, BoundsStayBoundsWhenTheyAreRounded) {
+  EXPECT_EQ(rounded_down(2.940988003064926, 13), "2.940988003064");
+  EXPECT_EQ(rounded_up(2.9409880030963724, 13), "2.940988003097");
+  EXPECT_EQ(rounded_up(-2.9409880030963724, 13), "-2.940988003096");
+  EXPECT_EQ(rounded_up(9.99999, 3), "10");
+  EXPECT_EQ(rounded_down(0.5, 3), "0.5");
+  EXPECT_EQ(rounded_up(0, 3), "0");
+  std::mt19937_64 random(5);
+  std::uniform_real_distribution<double> mantissa(-10, 10), power(-300, 300);
+  for (int k = 0; k < 20000; ++k) {
+    const double number = mantissa(random) * std::pow(10, power(random));
+    for (const int digits : {2, 4, 7, 11, 15, 17}) {
+      const double low = std::strtod(rounded_down(number, digits).c_str(), nullptr);
+      const double high = std::strtod(rounded_up(number, digits).c_str(), nullptr);
+      ASSERT_LE(low, number) << digits;
+      ASSERT_GE(high, number) << digits;
+      // One unit of the last digit; what was read back is itself rounded, by up to 2 % of that at 15 digits.
+      ASSERT_LE(high - low, 1.05 * std::fabs(number) * std::pow(10, 1 - std::min(digits, 15)))
+          << number << " " << digits;
+    }
+  }
 }
 
 TEST(Numbers, SizesAndFlopsCarryTheLargestPrefix) {

@@ -1,0 +1,36 @@
+// What the charts of a page have in common: a frame, an axis with round numbers, and texts.
+#pragma once
+
+#include <string>
+#include <string_view>
+
+namespace stanchion {
+
+/// 1, 2 or 5 times a power of ten, so that about `many` of them span `range`.
+double tick_step(double range, int many);
+
+/// An SVG element in the making, of the page's classes; x runs from `low` to `high` between its margins.
+class Chart {
+ public:
+  static constexpr double kWidth = 760, kLeft = 84, kRight = 24;
+
+  Chart(double height, const std::string& title, double low, double high);
+
+  double x(double value) const;
+  void line(double x1, double y1, double x2, double y2, const char* kind);
+  /// Filled by its class, or with a pattern: "hatch" or "mesh".
+  void rectangle(double left, double top, double right, double bottom, const char* kind,
+                 const std::string& title, const char* pattern = nullptr);
+  /// `shape` as path data around the place, "M-4-4L4 4".
+  void mark(double at_x, double at_y, const char* shape, const char* kind, const std::string& title);
+  void text(double at_x, double at_y, const char* anchor, std::string_view words, const char* kind = "");
+  /// Ticks at round numbers below y, and the name of the axis below them; whole numbers only if `whole`.
+  void axis(double y, const std::string& name, bool whole);
+  std::string done();
+
+ private:
+  double low_, high_;
+  std::string svg_;
+};
+
+}  // namespace stanchion
