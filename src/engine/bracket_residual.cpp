@@ -2,12 +2,10 @@
 
 #include <algorithm>
 #include <cmath>
-#include <cstdio>
-#include <cstdlib>
-#include <tuple>
 
-#include "base/fault_words.hpp"
 #include "engine/mode_search.hpp"
+#include "engine/residual_proof.hpp"
+#include "model/shift_grid.hpp"
 
 namespace stanchion {
 namespace {
@@ -26,196 +24,147 @@ class ResidualBrackets {
         context_(context),
         question_(question),
         pool_(pool),
-        outcome_(outcome) {}
+        outcome_(outcome),
+        proof_(counter, request, outcome, answer_.counts) {}
 
   Result<ResidualAnswer> run() {
     const auto count = [this](double shift) { return count_at(shift); };
     auto base = settle_base(counter_, request_, context_, count, pool_, outcome_);
     if (!base.ok()) return base.status();
-    base_ = std::move(*base);
-    if (!base_) return std::move(answer_);
-    search_.emplace(counter_, *base_, request_, context_, pool_, outcome_);
-    Result<bool> done = question_.first ? bracket_first() : bracket_range();
-    if (!done.ok()) return done.status();
-    if (!*done) answer_.found.reset();
+    if (!*base) return std::move(answer_);
+    start_ = 0 - (**base).tau;
+    stand_on(std::move(**base));
+    auto found = question_.first ? bracket_first() : bracket_range();
+    if (!found.ok()) return found.status();
+    answer_.found = std::move(*found);
     return std::move(answer_);
   }
 
  private:
-  // ---- counts and groups
-  // ----------------------------------------------------------------------------------------
+  static std::optional<FoundRange> nothing() { return std::nullopt; }
 
-  Result<std::optional<CountFact>> count_at(double shift) {
-    if (const CountFact* known = answer_.counts.at(shift)) return std::optional<CountFact>(*known);
-    if (counter_.kind() == CountKind::kAbove && shift == counter_.origin()) {
-      return std::optional<CountFact>(counter_.fact_at_origin());
-    }
-    const auto warnings = outcome_.warnings.size();
-    auto count = counter_.count(shift);
-    if (!count.ok()) return count.status();
-    outcome_.warnings.resize(warnings);
-    auto fact = counter_.fact(*count);
-    if (!fact) return fact;
-    return remember(*fact);
-  }
-
-  /// 1 / theta - tau of the two ends, both roundings outwards.
-  std::pair<double, double> values_of(const EigenvalueGroup& group) const {
-    const double low = 1 / group.high, high = 1 / group.low;
-    const auto outwards = [&](double value, double part, int direction) {
-      return value +
-             direction * 0x1p-51 * (std::fabs(value) + 2 * std::fabs(part) + 2 * std::fabs(base_->tau));
-    };
-    return {outwards(low - base_->tau, low, -1), outwards(high - base_->tau, high, 1)};
-  }
-
-  /// The number at `shift`, when so many as `expected` were shown on its side already: no more than that is
-  /// then all that is left to show. Otherwise it is counted.
-  Result<std::optional<CountFact>> count_expecting(double shift, Offset expected) {
-    if (answer_.counts.at(shift)) return count_at(shift);
-    auto most = counter_.at_most(shift, static_cast<Index>(expected));
-    if (!most.ok()) return most.status();
-    if (*most && **most < expected) return too_many();
-    if (!*most || **most > expected) return count_at(shift);
-    const Offset number = counter_.two_sided() && shift < 0 ? -expected : expected;
-    CountFact fact{shift, number, number, std::nullopt, Level::kProved, 0};
-    for (const Certificate* why : {&base_->base.certificate(), &counter_.base()}) {
-      if (why->level != Level::kStatistical) continue;
-      fact.level = Level::kStatistical;
-      fact.failure_probability += why->failure_probability.value_or(0);
-    }
-    return remember(fact);
-  }
-
-  static Status too_many() {
-    return Status::internal(
-        std::string("more values lie in disjoint residual intervals than a certified count allows: ") +
-        kMachineOrProgram);
-  }
-
-  Result<std::optional<CountFact>> remember(const CountFact& fact) {
-    answer_.counts.add(fact);
-    if (answer_.counts.contradictions().empty()) return std::optional(fact);
-    return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
-  }
-
-  /// Groups of pairs by the side of zero they are on: their values come from different ends of the spectrum.
-  struct Sides {
-    std::vector<EigenvalueGroup> above, below;
-    static Offset number(const std::vector<EigenvalueGroup>& groups) {
-      Offset sum = 0;
-      for (const EigenvalueGroup& group : groups) sum += static_cast<Offset>(group.pairs.size());
-      return sum;
-    }
-  };
-
-  /// Those whose values lie between `from` and `to` for certain.
-  Sides groups_inside(const std::vector<ResidualPair>& pairs, double from, double to) const {
-    Sides sides;
-    for (EigenvalueGroup& group : disjoint_groups(base_->base, pairs)) {
-      if (!(group.low * group.high > 0) || !std::isfinite(group.low) || !std::isfinite(group.high)) continue;
-      const auto [low_end, high_end] = values_of(group);
-      if (!(low_end > from) || !(high_end < to)) continue;
-      (group.low > 0 ? sides.above : sides.below).push_back(std::move(group));
-    }
-    return sides;
-  }
-
-  FoundValues found_of(const std::vector<ResidualPair>& pairs, const EigenvalueGroup& group) const {
-    FoundValues found;
-    std::tie(found.low, found.high) = values_of(group);
-    double sum = 0;
-    for (const std::size_t p : group.pairs) sum += base_->shift_of(pairs[p].theta);
-    found.value = std::clamp(sum / static_cast<double>(group.pairs.size()), found.low, found.high);
-    found.count = static_cast<Index>(group.pairs.size());
-    found.level = base_->base.certificate().level;
-    found.failure_probability = base_->base.certificate().failure_probability.value_or(0);
-    found.proof = "residual";
-    if (request_.bracket.want_modes) {
-      for (const std::size_t p : group.pairs) {
-        found.modes.push_back(counter_.pencil().mode_of(pairs[p].vector, base_->shift_of(pairs[p].theta),
-                                                        pairs[p].radius / std::fabs(pairs[p].theta)));
-      }
-    }
-    return found;
-  }
-
-  /// Whether the groups inside (from, to) are all that the counts at the two ends say there is. Too many
-  /// would contradict a certified count: a fault. When they are all, they are the answer.
-  Result<bool> settle(const std::vector<ResidualPair>& pairs, const std::optional<CountFact>& low,
-                      const CountFact& high, double from, double to) {
-    const CountedRange range = counted_range(low, high, from, to);
-    if (!range.count) return false;
-    Sides sides = groups_inside(pairs, from, to);
-    const Offset sum = Sides::number(sides.above) + Sides::number(sides.below);
-    if (sum > *range.count) return too_many();
-    if (sum < *range.count) return false;
-    sharpen_all(pairs, from, to, sides);
-    FoundRange found;
-    for (const auto* groups : {&sides.above, &sides.below}) {
-      for (const EigenvalueGroup& group : *groups) found.values.push_back(found_of(pairs, group));
-    }
-    std::sort(found.values.begin(), found.values.end(),
-              [](const FoundValues& a, const FoundValues& b) { return a.low < b.low; });
-    for (FoundValues& values : found.values) {
-      if (range.level != Level::kStatistical) continue;
-      values.level = Level::kStatistical;
-      values.failure_probability += range.failure_probability.value_or(0);
-    }
-    found.complete = range;
-    answer_.found = std::move(found);
-    return true;
-  }
-
-  /// The groups are all that is between the two ends: each is alone between its neighbours, and the outermost
-  /// have an end beside them, or nothing up to infinity. The ends of theta are rounded inwards.
-  void sharpen_all(const std::vector<ResidualPair>& pairs, double from, double to, Sides& sides) const {
-    const double pole = -base_->tau;
-    const auto inwards = [&](double shift, int direction) {
-      const double theta = base_->theta_of(shift);
-      return theta + direction * 0x1p-50 * std::fabs(theta);
-    };
-    sharpen(base_->base, pairs, inwards(to, 1), from > pole ? inwards(from, -1) : INFINITY, sides.above);
-    sharpen(base_->base, pairs, to < pole ? inwards(to, 1) : -INFINITY, inwards(from, -1), sides.below);
-  }
+  Result<std::optional<CountFact>> count_at(double shift) { return proof_.count_at(shift); }
 
   /// Below this no value is counted.
   double lowest() const { return counter_.kind() == CountKind::kBelow ? -INFINITY : counter_.origin(); }
 
-  /// Steps until `look`, which leaves in `seen` what there is, says so; from a base near a crowd once seen.
-  Result<bool> iterate(const std::function<bool()>& look, const Candidates& seen, Side side,
-                       std::size_t wanted) {
-    bool move = false;
-    auto enough = search_->iterate([&] {
-      if (look()) return true;
-      move = !moved_ && counter_.two_sided() && side != Side::kBoth && search_->crowded(seen, wanted);
-      return move;
-    });
-    if (!enough.ok() || !move) return enough;
-    if (Status status = move_near(seen, side, wanted); !status.ok()) return status;
-    return search_->iterate(look);
+  void stand_on(SpectralBase base) {
+    base_ = std::move(base);
+    proof_.stand_on(*base_);
+    search_.emplace(counter_, *base_, request_, context_, pool_, outcome_);
   }
 
-  /// Goes on from a base half the width of the crowd before it; from the old one where none is to be had.
-  Status move_near(const Candidates& found, Side side, std::size_t wanted) {
-    moved_ = true;
-    const double first = base_->shift_of(found.list.front().theta);
-    const double width = base_->shift_of(found.list[wanted - 1].theta) - first;
+  // ---- a crowd
+  // ---------------------------------------------------------------------------------------------------
+
+  enum class Ended { kEnough, kExhausted, kCrowd };
+
+  /// Steps until `look` says so, or, from the base that all began with, `crowd`, where a base near it is to
+  /// be had.
+  Result<Ended> iterate(const std::function<bool()>& look, const std::function<bool()>& crowd) {
+    bool seen = false;
+    auto enough = search_->iterate([&] {
+      if (look()) return true;
+      seen = !near_ && crowd() && search_->room_for_factor();
+      return seen;
+    });
+    if (!enough.ok()) return enough.status();
+    return seen ? Ended::kCrowd : *enough ? Ended::kEnough : Ended::kExhausted;
+  }
+
+  /// Estimates of where values begin and end, on one side of 0.
+  struct Extent {
+    double first = 0, last = 0;
+    std::size_t number = 0;
+  };
+
+  /// Of the first `many` of `found`, those on `side`; where none is, the first that is.
+  Extent extent_of(const Candidates& found, std::size_t many, Side side) const {
+    Extent extent;
+    for (std::size_t k = 0; k < found.list.size() && (k < many || extent.first == 0); ++k) {
+      const double shift = base_->shift_of(found.list[k].theta);
+      if (side != Side::kBoth && counter_.two_sided() && (shift > 0) != (side == Side::kPositive)) continue;
+      if (extent.first == 0) extent.first = shift;
+      extent.last = shift;
+      if (k < many) ++extent.number;
+    }
+    return extent;
+  }
+
+  /// Takes a base half the width of the extent before it, or, where a value lies before that, twice; the one
+  /// that all began with where neither is definite, or none can be kept.
+  Status stand_near(const Extent& extent) {
+    near_ = true;
     search_.reset();  // its vectors take more memory than the second factor
-    auto near = base_at(counter_, first - width / 2, pool_, outcome_);
-    if (!near.ok()) return near.status();
-    if (*near) base_ = std::move(*near);
-    search_.emplace(counter_, *base_, request_, context_, pool_, outcome_);
-    const Index most = static_cast<Index>(wanted) + kBlockVectors;
-    search_->start(static_cast<Index>(wanted), side == Side::kPositive ? KeptValues{most, kBlockVectors}
-                                                                       : KeptValues{kBlockVectors, most});
+    for (const double part : {0.5, 2.0}) {
+      const double shift = extent.first - part * (extent.last - extent.first);
+      const bool beyond_start = extent.first < start_ ? shift < start_ : shift > start_;
+      if (extent.first == start_ || !beyond_start || shift == extent.first) break;
+      auto near = base_at(counter_, shift, pool_, outcome_);
+      if (!near.ok()) return near.status();
+      if (!*near) continue;
+      stand_on(std::move(**near));
+      return {};
+    }
+    if (0 - base_->tau == start_) {
+      search_.emplace(counter_, *base_, request_, context_, pool_, outcome_);
+      return {};
+    }
+    auto again = base_at(counter_, start_, pool_, outcome_);
+    if (!again.ok()) return again.status();
+    if (*again) stand_on(std::move(**again));
     return {};
+  }
+
+  void start(std::size_t wanted, Side side) {
+    search_->start(static_cast<Index>(wanted), keep(static_cast<Index>(wanted) + kBlockVectors, side));
+  }
+
+  /// The first `wanted` of both sides, each from a base of its own: those of the side that has most of them,
+  /// and whatever lies as near on the other one.
+  Result<std::optional<FoundRange>> first_apart(const Candidates& seen, std::size_t wanted) {
+    const Extent up = extent_of(seen, wanted, Side::kPositive);
+    const Extent down = extent_of(seen, wanted, Side::kNegative);
+    const bool mostly_up = up.number >= down.number;
+    const Side most = mostly_up ? Side::kPositive : Side::kNegative;
+    std::size_t part = std::max(up.number, down.number);
+    for (;;) {
+      if (Status status = stand_near(mostly_up ? up : down); !status.ok()) return status;
+      start(part, most);
+      auto near = first_on(most, part);
+      if (!near.ok() || !*near) return near;
+      const double reach = mostly_up ? (*near)->complete->to : (*near)->complete->from;
+      auto other = all_between_zero_and(-reach, mostly_up ? down : up);
+      if (!other.ok() || !*other) return other;
+      FoundRange all = mostly_up ? joined(std::move(**other), std::move(**near))
+                                 : joined(std::move(**near), std::move(**other));
+      if (*all.complete->count >= static_cast<Index>(wanted) || part == wanted)
+        return std::optional(nearest_of(std::move(all), static_cast<Index>(wanted)));
+      part = wanted;
+    }
+  }
+
+  Result<std::optional<FoundRange>> all_between_zero_and(double end, Extent extent) {
+    auto fact = count_at(end);
+    if (!fact.ok()) return fact.status();
+    if (!*fact || !(*fact)->exact()) return nothing();
+    const auto number = static_cast<std::size_t>(std::abs((*fact)->least));
+    const CountFact zero = counter_.fact_at_origin();
+    if (end > 0 && number == 0) return proof_.settle({}, zero, **fact, 0, end);
+    if (number == 0) return proof_.settle({}, **fact, zero, end, 0);
+    if (number > static_cast<std::size_t>(counter_.pencil().analysis().tree.rows)) return nothing();
+    if (std::fabs(extent.first) > std::fabs(end)) extent.first = end;
+    extent.last = end;
+    if (Status status = stand_near(extent); !status.ok()) return status;
+    const Side side = end > 0 ? Side::kPositive : Side::kNegative;
+    start(number, side);
+    return end > 0 ? search_outside(zero, **fact, 0, end) : search_outside(**fact, zero, end, 0);
   }
 
   // ---- a range
   // --------------------------------------------------------------------------------------------------
 
-  Result<bool> bracket_range() {
+  Result<std::optional<FoundRange>> bracket_range() {
     const ValueRange range = countable(counter_, question_.range);
     std::optional<CountFact> low, high;
     if (counter_.two_sided()) {
@@ -230,53 +179,37 @@ class ResidualBrackets {
         if (!counted.ok()) return counted.status();
         *fact = *counted;
       }
-      if (!low) return false;
+      if (!low) return nothing();
     } else {
       if (range.low) {
         auto counted = count_at(*range.low);
         if (!counted.ok()) return counted.status();
         low = *counted;
-        if (!low) return false;
+        if (!low) return nothing();
       }
       auto counted = count_at(*range.high);
       if (!counted.ok()) return counted.status();
       high = *counted;
     }
-    if (!high || !high->exact() || (low && !low->exact())) return false;
+    if (!high || !high->exact() || (low && !low->exact())) return nothing();
     const double from = range.low.value_or(lowest()), to = *range.high;
     const Offset between = high->least - (low ? low->least : 0);
-    if (between == 0) return settle({}, low, *high, from, to);
+    if (between == 0) return proof_.settle({}, low, *high, from, to);
     // From the outermost side of zero inwards everything comes before what is asked.
-    const Offset positive = std::max<Offset>(0, high->least);
-    const Offset negative = counter_.two_sided() ? std::max<Offset>(0, -low->least) : 0;
-    if (positive + negative > counter_.pencil().analysis().tree.rows) return false;
-    if (lies_inside(positive + negative, between, from, to)) {
+    const Offset outside = std::max<Offset>(0, high->least) +
+                           (counter_.two_sided() ? std::max<Offset>(0, -low->least) : Offset{0});
+    if (outside > counter_.pencil().analysis().tree.rows) return nothing();
+    if (lies_inside(outside, between, from, to)) {
       auto started = search_->start_inside(from, to, static_cast<Index>(between));
       if (!started.ok()) return started.status();
       if (*started) {
-        Candidates nearest;
-        auto done =
-            search_range(low, *high, from, to, nearest, Side::kBoth, [&](std::vector<Candidate>& chosen) {
-              nearest = search_->candidates(Side::kBoth);
-              chosen = inside({&nearest}, from, to);
-              return nearest.leading >= static_cast<std::size_t>(between);
-            });
-        if (!done.ok() || *done) return done;
+        auto found = search_inside(low, *high, from, to, static_cast<std::size_t>(between));
+        if (!found.ok() || *found) return found;
       }
     }
-    const auto wanted = static_cast<Index>(positive + negative);
-    const Index keep = wanted + kBlockVectors;
-    search_->start(wanted, {keep, counter_.kind() == CountKind::kBelow ? 0 : keep});
-    Candidates up, down;
-    const Side side = negative == 0 ? Side::kPositive : positive == 0 ? Side::kNegative : Side::kBoth;
-    return search_range(low, *high, from, to, negative == 0 ? up : down, side,
-                        [&](std::vector<Candidate>& chosen) {
-                          up = search_->candidates(Side::kPositive);
-                          down = search_->candidates(Side::kNegative);
-                          chosen = inside({&up, &down}, from, to);
-                          return up.leading >= static_cast<std::size_t>(positive) &&
-                                 down.leading >= static_cast<std::size_t>(negative);
-                        });
+    const Index most = static_cast<Index>(outside) + kBlockVectors;
+    search_->start(static_cast<Index>(outside), {most, counter_.kind() == CountKind::kBelow ? 0 : most});
+    return search_outside(low, *high, from, to);
   }
 
   /// Whether the values asked lie so far inside that one more factorization, among them, pays.
@@ -285,22 +218,73 @@ class ResidualBrackets {
     return one_side && from_outside > 2 * between + 4 * kBlockVectors;
   }
 
-  /// `look` looks at the space, leaves in `seen` what there is, chooses from it, and says whether the search
-  /// may end. `side`: where all of them are; both: no crowd is looked for.
-  Result<bool> search_range(const std::optional<CountFact>& low, const CountFact& high, double from,
-                            double to, const Candidates& seen, Side side,
-                            const std::function<bool(std::vector<Candidate>&)>& look) {
+  /// Around the shift that the space is of.
+  Result<std::optional<FoundRange>> search_inside(const std::optional<CountFact>& low, const CountFact& high,
+                                                  double from, double to, std::size_t between) {
     for (int attempt = 0; attempt < kMostAttempts; ++attempt) {
       std::vector<Candidate> chosen;
-      auto enough = iterate([&] { return look(chosen); }, seen, side, search_->wanted());
+      auto enough = search_->iterate([&] {
+        const Candidates nearest = search_->candidates(Side::kBoth);
+        chosen = inside({&nearest}, from, to);
+        return nearest.leading >= between;
+      });
       if (!enough.ok()) return enough.status();
-      auto pairs = search_->pairs_of(chosen, chosen.size());
-      if (!pairs.ok()) return pairs.status();
-      auto done = settle(*pairs, low, high, from, to);
-      if (!done.ok() || *done) return done;
+      auto found = settle(chosen, low, high, from, to);
+      if (!found.ok() || *found) return found;
       search_->look_closer();
     }
-    return false;
+    return nothing();
+  }
+
+  /// From the outermost thetas inwards, as many as the counts at the ends say.
+  Result<std::optional<FoundRange>> search_outside(const std::optional<CountFact>& low, const CountFact& high,
+                                                   double from, double to) {
+    const auto positive = static_cast<std::size_t>(std::max<Offset>(0, high.least));
+    const auto negative =
+        static_cast<std::size_t>(counter_.two_sided() ? std::max<Offset>(0, -low->least) : Offset{0});
+    Candidates up, down;
+    std::vector<Candidate> chosen;
+    const auto look = [&] {
+      up = search_->candidates(Side::kPositive);
+      down = search_->candidates(Side::kNegative);
+      chosen = inside({&up, &down}, from, to);
+      return up.leading >= positive && down.leading >= negative;
+    };
+    const auto crowd = [&] { return search_->crowded(up, positive) || search_->crowded(down, negative); };
+    for (int attempt = 0; attempt < kMostAttempts; ++attempt) {
+      auto ended = iterate(look, crowd);
+      if (ended.ok() && *ended == Ended::kCrowd) {
+        const Extent above = extent_of(up, positive, Side::kPositive);
+        const Extent below = extent_of(down, negative, Side::kNegative);
+        if (positive > 0 && negative > 0) return range_apart(from, below, to, above);
+        if (Status status = stand_near(negative > 0 ? below : above); !status.ok()) return status;
+        start(positive + negative, negative > 0 ? Side::kNegative : Side::kPositive);
+        ended = iterate(look, crowd);
+      }
+      if (!ended.ok()) return ended.status();
+      auto found = settle(chosen, low, high, from, to);
+      if (!found.ok() || *found) return found;
+      search_->look_closer();
+    }
+    return nothing();
+  }
+
+  Result<std::optional<FoundRange>> range_apart(double from, const Extent& below, double to,
+                                                const Extent& above) {
+    auto found_above = all_between_zero_and(to, above);
+    if (!found_above.ok() || !*found_above) return found_above;
+    auto found_below = all_between_zero_and(from, below);
+    if (!found_below.ok() || !*found_below) return found_below;
+    return std::optional(joined(std::move(**found_below), std::move(**found_above)));
+  }
+
+  /// Rigorous pairs of those chosen, compared with the counts at the ends.
+  Result<std::optional<FoundRange>> settle(const std::vector<Candidate>& chosen,
+                                           const std::optional<CountFact>& low, const CountFact& high,
+                                           double from, double to) {
+    auto pairs = search_->pairs_of(chosen, chosen.size());
+    if (!pairs.ok()) return pairs.status();
+    return proof_.settle(*pairs, low, high, from, to);
   }
 
   std::vector<Candidate> inside(std::initializer_list<const Candidates*> sides, double from,
@@ -332,72 +316,81 @@ class ResidualBrackets {
   }
 
   /// What a full space is reduced to.
-  KeptValues keep(Index most) const {
+  KeptValues keep(Index most, Side side) const {
     if (counter_.kind() == CountKind::kBelow) return {most, 0};
     if (!counter_.two_sided()) return {most, kBlockVectors};
-    if (question_.side == Side::kBoth) return {most, most};
-    return question_.side == Side::kPositive ? KeptValues{most, kBlockVectors}
-                                             : KeptValues{kBlockVectors, most};
+    if (side == Side::kBoth) return {most, most};
+    return side == Side::kPositive ? KeptValues{most, kBlockVectors} : KeptValues{kBlockVectors, most};
   }
 
-  Result<bool> bracket_first() {
+  Result<std::optional<FoundRange>> bracket_first() {
     const Side side = counter_.two_sided() ? question_.side : Side::kPositive;
     const auto wanted = static_cast<std::size_t>(*question_.first + base_->rigid);
-    search_->start(static_cast<Index>(wanted), keep(static_cast<Index>(wanted) + kBlockVectors));
-    std::size_t many = 0;
+    start(wanted, side);
+    auto found = first_on(side, wanted);
+    if (!found.ok() || !*found) return found;
+    // What is beyond those asked: a cluster taken in whole, or values that came up at the end.
+    const auto asked = static_cast<Index>(wanted), sum = (*found)->complete->count.value_or(0);
+    answer_.more_than_asked = std::max<Index>(0, sum - asked);
+    answer_.fewer_than_asked = std::max<Index>(0, asked - sum);
+    return found;
+  }
+
+  Result<std::optional<FoundRange>> first_on(Side side, std::size_t wanted) {
     for (int attempt = 0; attempt < kMostAttempts; ++attempt) {
       Candidates found;
+      std::size_t many = 0;
       const auto look = [&] {
         found = search_->candidates(side);
         many = end_of_cluster(found, wanted);
         return many > 0;
       };
-      auto enough = iterate(look, found, side, wanted);
-      if (!enough.ok()) return enough.status();
-      if (!*enough) many = found.leading;  // the space holds no more: perhaps there are fewer
+      const auto crowd = [&] { return search_->crowded(found, wanted); };
+      auto ended = iterate(look, crowd);
+      if (ended.ok() && *ended == Ended::kCrowd) {
+        if (side == Side::kBoth) return first_apart(found, wanted);
+        if (Status status = stand_near(extent_of(found, wanted, side)); !status.ok()) return status;
+        start(wanted, side);
+        ended = iterate(look, crowd);
+      }
+      if (!ended.ok()) return ended.status();
+      if (*ended == Ended::kExhausted) many = found.leading;  // no room for more: perhaps there are fewer
       auto pairs = search_->pairs_of(found.list, many);
       if (!pairs.ok()) return pairs.status();
-      auto done = settle_first(*pairs, found, many, side, wanted);
-      if (!done.ok()) return done;
-      if (*done) {
-        // What is beyond those asked: a cluster taken in whole, or values that came up at the end.
-        Offset sum = 0;
-        for (const FoundValues& values : answer_.found->values) sum += values.count;
-        answer_.more_than_asked = static_cast<Index>(std::max<Offset>(0, sum - static_cast<Offset>(wanted)));
-        answer_.fewer_than_asked = static_cast<Index>(std::max<Offset>(0, static_cast<Offset>(wanted) - sum));
-        return true;
-      }
+      auto settled = settle_first(*pairs, found, many, side, wanted);
+      if (!settled.ok() || *settled) return settled;
       search_->look_closer();
     }
-    return false;
+    return nothing();
   }
 
   /// The end of the range in the gap behind the last of `many`, counted, and compared.
-  Result<bool> settle_first(const std::vector<ResidualPair>& pairs, const Candidates& found, std::size_t many,
-                            Side side, std::size_t wanted) {
+  Result<std::optional<FoundRange>> settle_first(const std::vector<ResidualPair>& pairs,
+                                                 const Candidates& found, std::size_t many, Side side,
+                                                 std::size_t wanted) {
     double theta = 0;
     if (many == 0 || many >= found.list.size() || many < wanted) {
       // Fewer than asked: look well beyond the last, or beyond the largest of the other side.
       const double largest = search_->largest();
-      if (!(largest > 0)) return false;
+      if (!(largest > 0)) return nothing();
       theta = many > 0 ? std::fabs(found.list[many - 1].theta) / 4 : largest / 16;
     } else {
       const double last = std::fabs(found.list[many - 1].theta), next = std::fabs(found.list[many].theta);
       theta = next + 0.5 * (last - next);
     }
     const double gap = 0.2 * gap_of(found, many, theta), sign = side == Side::kNegative ? -1 : 1;
-    double end = round_between(std::fabs(base_->shift_of(sign * theta * (1 - gap))),
-                               std::fabs(base_->shift_of(sign * theta * (1 + gap))));
+    double end = shortest_between(sign * base_->shift_of(sign * theta * (1 - gap)),
+                                  sign * base_->shift_of(sign * theta * (1 + gap)));
     if (many < wanted) {
       auto reached = look_further(end, side, static_cast<Offset>(many));
       if (!reached.ok()) return reached.status();
-      if (!*reached) return false;  // there are more, too far out for this space
+      if (!*reached) return nothing();  // there are more, too far out for this space
     }
     std::optional<CountFact> low, high;
     const CountFact zero = counter_.fact_at_origin();
-    const Sides shown = groups_inside(pairs, counter_.two_sided() ? -end : -base_->tau, end);
+    const GroupSides shown = proof_.groups_inside(pairs, counter_.two_sided() ? -end : start_, end);
     if (side != Side::kNegative) {
-      auto counted = count_expecting(end, Sides::number(shown.above));
+      auto counted = proof_.count_expecting(end, GroupSides::number(shown.above));
       if (!counted.ok()) return counted.status();
       high = *counted;
     } else {
@@ -405,19 +398,20 @@ class ResidualBrackets {
     }
     if (counter_.two_sided()) low = zero;
     if (side != Side::kPositive) {
-      auto counted = count_expecting(-end, Sides::number(shown.below));
+      auto counted = proof_.count_expecting(-end, GroupSides::number(shown.below));
       if (!counted.ok()) return counted.status();
       low = *counted;
     }
-    if (!high || (!low && counter_.two_sided())) return false;
-    // Without a lower end: nothing lies below -tau, for K + tau M is definite and M semidefinite.
-    const double from = low ? low->shift : 0 - base_->tau;
-    auto done = settle(pairs, low, *high, from, high->shift);
-    if (done.ok() && *done && !low) rest_on_base(*answer_.found->complete);
+    if (!high || (!low && counter_.two_sided())) return nothing();
+    // Without a lower end: nothing lies below the base, which is definite, for M is semidefinite or what lies
+    // lower is not counted; nor between it and the one that all began with, as definite.
+    const double from = low ? low->shift : start_;
+    auto done = proof_.settle(pairs, low, *high, from, high->shift);
+    if (done.ok() && *done && !low) rest_on_base(*(*done)->complete);
     return done;
   }
 
-  /// That nothing lies below -tau is known from the base alone.
+  /// That nothing lies below the base is known from the base alone.
   void rest_on_base(CountedRange& range) const {
     const Certificate& base = base_->base.certificate();
     if (base.level != Level::kStatistical) return;
@@ -453,19 +447,6 @@ class ResidualBrackets {
     return std::clamp((theta - next) / theta, 0.0, 0.5);
   }
 
-  /// A number between `a` and `b` with as few digits as possible.
-  static double round_between(double a, double b) {
-    const double low = std::min(a, b), high = std::max(a, b);
-    const double middle = low + (high - low) / 2;
-    for (int digits = 2; digits < 16; ++digits) {
-      char text[40];
-      std::snprintf(text, sizeof(text), "%.*g", digits, middle);
-      const double rounded = std::strtod(text, nullptr);
-      if (rounded > low && rounded < high) return rounded;
-    }
-    return middle;
-  }
-
   PencilCounter& counter_;
   const Request& request_;
   const RunContext& context_;
@@ -473,9 +454,11 @@ class ResidualBrackets {
   ThreadPool& pool_;
   Outcome& outcome_;
   ResidualAnswer answer_;
+  ResidualProof proof_;
   std::optional<SpectralBase> base_;
   std::optional<ModeSearch> search_;
-  bool moved_ = false;  ///< a base near the values was made, or tried
+  double start_ = 0;   ///< the shift of the base that all began with
+  bool near_ = false;  ///< a base near the values was made, or tried
 };
 
 }  // namespace

@@ -202,8 +202,13 @@ bool ModeSearch::crowded(const Candidates& found, std::size_t wanted) const {
   if (wanted < 2 || found.list.size() < wanted || found.leading >= wanted / 2) return false;
   if (lanczos_->steps() < kPatience + static_cast<Index>(wanted) / 4) return false;
   const Candidate &first = found.list.front(), &last = found.list[wanted - 1];
-  const double width = 1 - last.theta / first.theta;
+  const double width = 1 - std::fabs(last.theta / first.theta);
   return width > kCluster && width < kCrowd && first.ritz.residual < 0.1 * width * std::fabs(first.theta);
+}
+
+bool ModeSearch::room_for_factor() const {
+  const Offset vectors = Offset{rows_.rows()} * lanczos_->columns() * Offset{sizeof(double)};
+  return counter_.pencil().analysis().forecast.peak_bytes_solve <= counter_.pencil().free_bytes() + vectors;
 }
 
 double ModeSearch::largest() {

@@ -51,12 +51,13 @@ class ModeSearch {
   /// already, a block of fresh random vectors joins the space.
   void look_closer();
 
-  /// Whether the first `wanted` of `found`, all of one side, are so hard to tell apart from here that a base
-  /// near them pays: they lie close together, many steps were taken, and the first is known well enough.
+  /// Whether the first `wanted` of `found`, of one side or of both, are so hard to tell apart from here that
+  /// a base near them pays: they lie close together, many steps were taken, and the first is known well
+  /// enough.
   bool crowded(const Candidates& found, std::size_t wanted) const;
 
-  /// So many were asked of the last start.
-  std::size_t wanted() const { return static_cast<std::size_t>(wanted_); }
+  /// Whether a second kept factor has room, once the vectors of this search are gone.
+  bool room_for_factor() const;
 
   /// Size of the largest theta found so far; 0 when nothing is.
   double largest();

@@ -26,6 +26,11 @@ double shortest_within(double value, double tolerance) {
   return value;
 }
 
+double shortest_between(double a, double b) {
+  const double half = (b - a) / 2;
+  return shortest_within(a + half, std::fabs(half) * (1 - 0x1p-20));
+}
+
 std::vector<double> shift_grid(const SweepRequest& sweep) {
   const double steps = sweep.points - 1;
   const double size = std::max(std::fabs(sweep.from), std::fabs(sweep.to));

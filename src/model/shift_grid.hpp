@@ -12,6 +12,9 @@ namespace stanchion {
 /// than twelve.
 double shortest_within(double value, double tolerance);
 
+/// Strictly between the two, which differ: the number of fewest digits; the middle where that takes more.
+double shortest_between(double a, double b);
+
 /// The shifts of the grid, ascending, its ends as given: equal steps or equal ratios to within a few
 /// roundings, and within these the number of fewest digits. Never closer than half a step, so that they stay
 /// apart.

@@ -122,15 +122,19 @@ class CylinderTest(ProgramTest):
         below = self.expect(0, "bracket", *model, "--below", end)
         # The same load the other way round: every factor changes its sign.
         mirrored = self.expect(0, "bracket", *model, "--load-sign", "minus", "--side", "negative", "--first", 20)
-        for document in first, below, mirrored:
+        both = self.expect(0, "bracket", *model, "--side", "both", "--first", 20)
+        around = self.expect(0, "bracket", *model, "--from", -end, "--to", end)
+        self.assertLess(both["complete"]["from"], -44)
+        for document in first, below, mirrored, both, around:
             self.assertEqual(sum(value["multiplicity"] for value in document["critical"]), document["complete"]["count"])
             self.assertLessEqual(document["work"]["factorizations"], 6 + len(document["critical"]) / 4)
             self.assertLessEqual({value["multiplicity"] for value in document["critical"]}, {1, 2})
             for value in document["critical"]:
                 self.assertLess(value["high"] - value["low"], 1e-8 * abs(value["high"]))
         self.assertGreaterEqual(first["complete"]["count"], 20)
-        for a, b in zip(first["critical"], below["critical"], strict=True):
-            self.assertLess(max(a["low"], b["low"]), min(a["high"], b["high"]))
+        for other in below, both, around:  # under tension it does not buckle
+            for a, b in zip(first["critical"], other["critical"], strict=True):
+                self.assertLess(max(a["low"], b["low"]), min(a["high"], b["high"]))
         for a, b in zip(first["critical"], reversed(mirrored["critical"]), strict=True):
             self.assertLess(max(a["low"], -b["high"]), min(a["high"], -b["low"]))
         # Counts alone, between the values: as many on either side of every gap that four digits can name.
