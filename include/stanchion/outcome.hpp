@@ -176,10 +176,10 @@ struct AuditOutcome {
   AuditVerdict verdict = AuditVerdict::kUnresolved;
   std::vector<AuditGap> gaps;
   CountedRange range;
-  Index listed = 0;   ///< values in the range
+  Index listed = 0;            ///< values in the range
   std::vector<double> values;  ///< those, as shifts of the pencil, ascending
-  Index outside = 0;  ///< values left out, outside the range asked
-  std::string proof;  ///< "counts": every stretch between two counts holds as many as are listed
+  Index outside = 0;           ///< values left out, outside the range asked
+  std::string proof;           ///< "counts": every stretch between two counts holds as many as are listed
   std::vector<CriticalValue> missing;  ///< with find_missing: brackets of what the gaps hold
   std::vector<std::string> sentences;
   bool in_hertz = false;

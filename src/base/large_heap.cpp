@@ -1,8 +1,8 @@
 // The heap of a program that links this file on large pages, never that of the library's users. METIS and the
 // containers of the analysis touch some hundred megabytes once, and a seventh of a large plate's time was the
 // system's handing out of pages of 4 kB. The C library asks for large ones where GLIBC_TUNABLES says so as a
-// process begins, and at no other time; hence a second beginning, before the other libraries have started their
-// threads. Figures: DEVELOPERS.md.
+// process begins, and at no other time; hence a second beginning, before the other libraries have started
+// their threads. Figures: DEVELOPERS.md.
 #include "base/large_heap.hpp"
 
 #include <fcntl.h>
@@ -32,7 +32,13 @@ long long bytes_of_named_files(int argc, char** argv) {
 namespace {
 
 constexpr char kVariable[] = "GLIBC_TUNABLES=";
-constexpr char kSetting[] = "glibc.malloc.hugetlb";
+constexpr char kAnySetting[] = "glibc.malloc.";
+// Large pages; and since pieces below 2 MB that are mapped one by one get none, and a heap that grows by less
+// none either: map apart from 4 MB on, grow by 8 MB, and give back what has been free at the top only from
+// 256 MB on.
+constexpr char kSetting[] =
+    "glibc.malloc.hugetlb=1:glibc.malloc.mmap_threshold=4194304:glibc.malloc.top_pad=8388608:"
+    "glibc.malloc.trim_threshold=268435456";
 constexpr std::size_t kMostVariables = 4096, kLongestValue = 4096;
 
 /// Whether the system gives large pages to those who ask, and only to them.
@@ -59,7 +65,7 @@ void begin_with_large_heap(int argc, char** argv, char** environment) {
       continue;
     }
     const char* value = *variable + sizeof kVariable - 1;
-    if (std::strstr(value, kSetting) != nullptr || std::strlen(value) > kLongestValue) return;
+    if (std::strstr(value, kAnySetting) != nullptr || std::strlen(value) > kLongestValue) return;
     if (value[0] == '\0') continue;
     std::strcat(setting, value);
     std::strcat(setting, ":");
@@ -67,13 +73,13 @@ void begin_with_large_heap(int argc, char** argv, char** environment) {
   if (!wants_large_heap(argc, argv) || !large_pages_on_request()) return;
   if (readlink("/proc/self/exe", program, sizeof program - 1) <= 0) return;
   std::strcat(setting, kSetting);
-  std::strcat(setting, "=1");
   variables[kept] = setting;
   execve(program, argv, variables);
 }
 
-[[gnu::used, gnu::section(".preinit_array")]] void (*const before_all_initializers)(int, char**, char**) =
-    begin_with_large_heap;
+[[gnu::used,
+  gnu::section(".preinit_array")]] void (*const before_all_initializers)(int, char**,
+                                                                         char**) = begin_with_large_heap;
 
 }  // namespace
 }  // namespace stanchion

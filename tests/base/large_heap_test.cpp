@@ -16,7 +16,8 @@ struct Seen {
 };
 
 Seen run_probe(const std::string& environment, const std::string& arguments) {
-  FILE* output = ::popen(("env -u GLIBC_TUNABLES " + environment + " " STANCHION_LARGE_HEAP_PROBE " " + arguments).c_str(), "r");
+  FILE* output = ::popen(
+      ("env -u GLIBC_TUNABLES " + environment + " " STANCHION_LARGE_HEAP_PROBE " " + arguments).c_str(), "r");
   std::string text;
   for (int c = std::fgetc(output); c != EOF; c = std::fgetc(output)) text += static_cast<char>(c);
   EXPECT_EQ(::pclose(output), 0);
@@ -35,7 +36,9 @@ bool large_pages_on_request() {
   return words.find("[madvise]") != std::string::npos;
 }
 
-constexpr char kSetting[] = "glibc.malloc.hugetlb=1";
+constexpr char kSetting[] =
+    "glibc.malloc.hugetlb=1:glibc.malloc.mmap_threshold=4194304:glibc.malloc.top_pad=8388608:"
+    "glibc.malloc.trim_threshold=268435456";
 
 class LargeHeap : public ::testing::Test {
  protected:
@@ -48,7 +51,8 @@ TEST_F(LargeHeap, BeginsAnewWithTheSettingAndTheSameArguments) {
   const Seen seen = run_probe("", "large one --two=3");
   EXPECT_EQ(seen.tunables, kSetting);
   EXPECT_EQ(seen.arguments, STANCHION_LARGE_HEAP_PROBE " large one --two=3");
-  EXPECT_GE(seen.kilobytes_on_large_pages, 2 << 10);  // one page at least: how many the system has is its affair
+  EXPECT_GE(seen.kilobytes_on_large_pages,
+            2 << 10);  // one page at least: how many the system has is its affair
 }
 
 TEST_F(LargeHeap, StaysAsItIsWhereNoneIsWanted) {
@@ -58,19 +62,22 @@ TEST_F(LargeHeap, StaysAsItIsWhereNoneIsWanted) {
 }
 
 TEST_F(LargeHeap, KeepsOtherSettingsAndVariables) {
-  EXPECT_EQ(run_probe("GLIBC_TUNABLES=glibc.malloc.tcache_count=5", "large").tunables,
-            "glibc.malloc.tcache_count=5:glibc.malloc.hugetlb=1");
+  EXPECT_EQ(run_probe("GLIBC_TUNABLES=glibc.pthread.rseq=1", "large").tunables,
+            std::string("glibc.pthread.rseq=1:") + kSetting);
   EXPECT_EQ(run_probe("GLIBC_TUNABLES=", "large").tunables, kSetting);
 }
 
 TEST_F(LargeHeap, LeavesAChoiceThatWasMade) {
+  EXPECT_EQ(run_probe("GLIBC_TUNABLES=glibc.malloc.tcache_count=5", "large").tunables,
+            "glibc.malloc.tcache_count=5");
   const Seen seen = run_probe("GLIBC_TUNABLES=glibc.malloc.hugetlb=0", "large");
   EXPECT_EQ(seen.tunables, "glibc.malloc.hugetlb=0");
   EXPECT_LT(seen.kilobytes_on_large_pages, 32 << 10);
 }
 
 TEST_F(LargeHeap, CountsTheFilesThatArgumentsName) {
-  const std::string name = (std::filesystem::temp_directory_path() / ("large_heap_" + std::to_string(::getpid()))).string();
+  const std::string name =
+      (std::filesystem::temp_directory_path() / ("large_heap_" + std::to_string(::getpid()))).string();
   std::ofstream(name) << std::string(600, 'x');
   EXPECT_EQ(run_probe("", "by-size " + name).tunables, "-");
   EXPECT_EQ(run_probe("", "by-size " + name + " --nodes=" + name).tunables, kSetting);
