@@ -77,9 +77,12 @@ void begin_with_large_heap(int argc, char** argv, char** environment) {
   execve(program, argv, variables);
 }
 
-[[gnu::used,
-  gnu::section(".preinit_array")]] void (*const before_all_initializers)(int, char**,
-                                                                         char**) = begin_with_large_heap;
+#ifdef STANCHION_HEAP_IS_GIVEN
+#define STANCHION_BEFORE_ALL_INITIALIZERS [[maybe_unused]]
+#else
+#define STANCHION_BEFORE_ALL_INITIALIZERS [[gnu::used, gnu::section(".preinit_array")]]
+#endif
+STANCHION_BEFORE_ALL_INITIALIZERS void (*const kBegin)(int, char**, char**) = begin_with_large_heap;
 
 }  // namespace
 }  // namespace stanchion
