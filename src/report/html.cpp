@@ -100,12 +100,13 @@ std::string question_to_html(const Outcome& outcome) {
     rows += fmt::format("<dt>{}</dt><dd>{}</dd>\n", label, text);
   };
   row("question", escaped(question_in_words(outcome)));
-  std::string command = program_name();
+  std::string command = escaped(program_name());
   for (const std::string& argument : outcome.arguments) {
     const bool plain = argument.find_first_of(" \t\"'$*?;&|<>()") == std::string::npos && !argument.empty();
-    command += " " + (plain ? argument : "'" + argument + "'");
+    const std::string word = escaped(plain ? argument : "'" + argument + "'");
+    command += " " + (argument.rfind('-', 0) == 0 ? "<span class=\"num\">" + word + "</span>" : word);
   }
-  row("as typed", fmt::format("<code>{}</code>", escaped(command)));
+  row("as typed", fmt::format("<code>{}</code>", command));
   const bool geometric = std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
                                      [](const InputRecord& i) { return i.role == "geometric"; });
   if (geometric) {

@@ -41,7 +41,8 @@ dl { display: grid; grid-template-columns: max-content minmax(0, 1fr); gap: .22r
 dt { color: var(--soft); } dd { margin: 0; }
 ul { margin: 0; padding-left: 1.1rem; } li { margin: 0 0 .3rem; }
 table { border-collapse: collapse; width: 100%; margin: .2rem 0; }
-th, td:first-child { overflow-wrap: normal; white-space: nowrap; }
+td { overflow-wrap: break-word; } td.digest { overflow-wrap: anywhere; } th, td:first-child { overflow-wrap: normal; white-space: nowrap; }
+table + dl { margin-top: .6rem; }
 th { text-align: left; font-weight: 600; color: var(--soft); border-bottom: 1px solid var(--line); }
 td, th { padding: .22rem .9rem .22rem 0; vertical-align: top; } .right { text-align: right; white-space: nowrap; overflow-wrap: normal; }
 table.close { font-size: .84rem; } table.close td, table.close th { padding-right: .55rem; }

@@ -16,12 +16,13 @@ constexpr double kPi = 3.14159265358979323846;
 
 /// In ems; bold faces are an eighth wider.
 double advance(unsigned char c) {
-  if (c == 'm' || c == 'w' || c == 'M' || c == 'W' || c == '@' || c == '%') return 0.99;
+  if (c == 'm' || c == 'w' || c == 'M' || c == 'W' || c == '@' || c == '%') return 1;
   if (c == ' ' || c == ',' || c == '.' || c == 'i' || c == 'j' || c == 'l' || c == ':' || c == ';' ||
       c == '\'')
-    return 0.34;
+    return 0.36;
   if (c >= 'A' && c <= 'Z') return 0.8;
-  if (c < 0x80) return c == '+' || c == '=' || c == '<' || c == '>' || c == '~' || c == '#' ? 0.84 : 0.64;
+  if (c < 0x80)
+    return c == '+' || c == '=' || c == '<' || c == '>' || c == '~' || c == '#' || c == '&' ? 0.84 : 0.64;
   return (c & 0xC0) == 0x80 ? 0 : 1;  // one character however many bytes
 }
 
