@@ -9,6 +9,7 @@
 #include "engine/side_by_side.hpp"
 #include "io/value_list.hpp"
 #include "model/frequency.hpp"
+#include "model/shift_grid.hpp"
 #include "spectrum/listed_values.hpp"
 
 namespace stanchion {
@@ -99,7 +100,10 @@ class Audit {
   /// most.
   void choose_range(double low, double high) {
     const bool factors = request_.pencil == Pencil::kGeometric || counter_.two_sided();
-    const auto beyond = [](double end, int direction) { return end + direction * kBeyond * std::fabs(end); };
+    const auto beyond = [](double end, int direction) {
+      const double size = kBeyond * std::fabs(end);
+      return shortest_within(end + direction * size, size / 2);
+    };
     const double lowest = counter_.kind() == CountKind::kAbove ? counter_.origin() : -INFINITY;
     from_ = factors ? (low > 0 ? 0 : beyond(low, -1)) : lowest;
     to_ = factors && high < 0 ? 0 : beyond(high, 1);

@@ -1,9 +1,6 @@
 #include <fmt/format.h>
 
-#include <algorithm>
 #include <cmath>
-#include <cstdlib>
-#include <iterator>
 
 #include "model/frequency.hpp"
 #include "report/numbers.hpp"
@@ -28,23 +25,8 @@ std::string verdict_in_words(const AuditOutcome& audit) {
   return "The list could not be judged";
 }
 
-/// The end of a range or gap with no more digits than keep it apart from the values listed and from the other
-/// end. What the user wrote in few digits stays as it is; most other ends were put there to count at.
-std::string end_of(const AuditOutcome& audit, double end, double other) {
-  const auto of = [&audit](double value) { return audit.in_hertz ? hertz_of(value) : value; };
-  const char* unit = audit.in_hertz ? " Hz" : "";
-  const auto after = std::lower_bound(audit.values.begin(), audit.values.end(), end);
-  for (int digits = 1; digits < 17; digits += 1) {
-    const std::string text =
-        digits < 7 ? fmt::format("{:.{}g}", of(end), digits) : fmt::format("{:#.{}g}", of(end), digits);
-    const double shown = std::strtod(text.c_str(), nullptr);
-    if (digits < 7 && std::fabs(shown - of(end)) > 1e-14 * std::fabs(of(end))) continue;
-    const bool apart = (after == audit.values.begin() || of(*std::prev(after)) < shown) &&
-                       (after == audit.values.end() || shown < of(*after) || *after == end) &&
-                       (end < other ? shown < of(other) : end == other || shown > of(other));
-    if (apart) return text + unit;
-  }
-  return exact(of(end)) + unit;
+std::string end_of(double value, bool hertz) {
+  return hertz ? fmt::format("{:.10g} Hz", hertz_of(value)) : exact(value);
 }
 
 std::string list_of(const std::vector<std::string>& labels) {
@@ -60,9 +42,9 @@ std::string list_of(const std::vector<std::string>& labels) {
 void write_audit(Page& page, const Outcome& outcome) {
   const AuditOutcome& audit = *outcome.audit;
   const CountedRange& range = audit.range;
-  const std::string to = end_of(audit, range.to, range.from);
+  const std::string to = end_of(range.to, audit.in_hertz);
   const std::string where = std::isfinite(range.from)
-                                ? fmt::format("between {} and {}", end_of(audit, range.from, range.to), to)
+                                ? fmt::format("between {} and {}", end_of(range.from, audit.in_hertz), to)
                                 : fmt::format("up to {}", to);
   page.sentence(fmt::format("{}: {} listed {}, {} counted.", verdict_in_words(audit), grouped(audit.listed),
                             where, range.count ? grouped(*range.count) : "an unknown number"));
@@ -73,8 +55,8 @@ void write_audit(Page& page, const Outcome& outcome) {
     page.blank();
     std::vector<std::vector<std::string>> rows{{"from", "to", "listed", "counted", "what is listed"}};
     for (const AuditGap& gap : audit.gaps) {
-      rows.push_back({std::isfinite(gap.low) ? end_of(audit, gap.low, gap.high) : "",
-                      end_of(audit, gap.high, gap.low), grouped(gap.listed), grouped(gap.counted),
+      rows.push_back({std::isfinite(gap.low) ? end_of(gap.low, audit.in_hertz) : "",
+                      end_of(gap.high, audit.in_hertz), grouped(gap.listed), grouped(gap.counted),
                       gap.labels.empty() ? "nothing" : list_of(gap.labels)});
     }
     page.table(rows, 4);

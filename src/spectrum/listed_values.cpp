@@ -4,6 +4,8 @@
 #include <cmath>
 #include <limits>
 
+#include "model/shift_grid.hpp"
+
 namespace stanchion {
 namespace {
 
@@ -12,8 +14,10 @@ void sort_by_low(std::vector<ValueSpan>& spans) {
                    [](const ValueSpan& a, const ValueSpan& b) { return a.low < b.low; });
 }
 
-double middle(double a, double b) {
-  return a + (b - a) / 2;
+/// In the middle half of what lies between the two; of few digits, for it is what the answer names.
+double amid(double a, double b) {
+  const double quarter = (b - a) / 4;
+  return quarter > 0 ? shortest_between(a + quarter, b - quarter) : a + (b - a) / 2;
 }
 
 }  // namespace
@@ -65,7 +69,7 @@ std::vector<Stretch> compare_spans(const std::vector<ValueSpan>& listed,
     }
   }
   for (std::size_t k = 0; k < stretches.size(); ++k) {
-    const double end = k + 1 < stretches.size() ? middle(stretches[k].high, stretches[k + 1].low) : to;
+    const double end = k + 1 < stretches.size() ? amid(stretches[k].high, stretches[k + 1].low) : to;
     stretches[k].low = k > 0 ? stretches[k - 1].high : from;
     stretches[k].high = end;
   }
@@ -114,7 +118,7 @@ bool each_surely_has_its_own(const std::vector<ValueSpan>& listed, const std::ve
 std::vector<double> shifts_in_gaps(const std::vector<ValueSpan>& clusters, double from, double to) {
   std::vector<double> shifts{from};
   for (std::size_t k = 1; k < clusters.size(); ++k)
-    shifts.push_back(middle(clusters[k - 1].high, clusters[k].low));
+    shifts.push_back(amid(clusters[k - 1].high, clusters[k].low));
   shifts.push_back(to);
   return shifts;
 }

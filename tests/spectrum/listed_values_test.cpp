@@ -2,6 +2,8 @@
 
 #include <gtest/gtest.h>
 
+#include <cmath>
+
 #include <algorithm>
 #include <random>
 
@@ -40,6 +42,20 @@ TEST(ListedValues, StretchesFillTheRangeAndSplitNothing) {
 TEST(ListedValues, OneShiftAGap) {
   EXPECT_EQ(shifts_in_gaps({span(1, 1.5), span(2.5, 3)}, 0, 5), (std::vector<double>{0, 2, 5}));
   EXPECT_EQ(shifts_in_gaps({}, 0, 5), (std::vector<double>{0, 5}));
+}
+
+TEST(ListedValues, ShiftsAndEndsOfStretchesHaveFewDigits) {
+  const std::vector<ValueSpan> spans{span(2.1234567890123, 2.1234567890124),
+                                     span(2.2345678901234, 2.3456789012345), span(2.34567891, 2.34567892)};
+  EXPECT_EQ(shifts_in_gaps(spans, 0, 3), (std::vector<double>{0, 2.2, 2.345678906, 3}));
+  const auto stretches = compare_spans(spans, {}, 0, 3);
+  ASSERT_EQ(stretches.size(), 3U);
+  EXPECT_EQ(stretches[0].high, 2.2);
+  EXPECT_EQ(stretches[1].high, 2.345678906);
+  // No room for fewer digits, or for any number at all between the two.
+  const double low = 1, next = std::nextafter(low, 2);
+  const double found = shifts_in_gaps({span(0.5, low), span(next, 2)}, 0, 3)[1];
+  EXPECT_TRUE(found == low || found == next);
 }
 
 TEST(ListedValues, EachNeedsAValueOfItsOwn) {
