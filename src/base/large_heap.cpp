@@ -52,37 +52,36 @@ bool large_pages_on_request() {
 }
 
 /// Begins the process anew with the setting; comes back, having changed nothing, where that cannot be done.
-void begin_with_large_heap(int argc, char** argv, char** environment) {
-  static char setting[sizeof kVariable + kLongestValue + sizeof kSetting + 4];
+[[maybe_unused]] void begin_with_large_heap(int argc, char** argv, char** environment) {
+  static char setting[sizeof kVariable + kLongestValue + sizeof kSetting + 1];
   static char* variables[kMostVariables + 2];
   static char program[PATH_MAX];
-  std::strcpy(setting, kVariable);
+  if (!wants_large_heap(argc, argv)) return;
+  const char* before = "";
   std::size_t kept = 0;
   for (char** variable = environment; *variable != nullptr; ++variable) {
     if (kept == kMostVariables) return;
-    if (std::strncmp(*variable, kVariable, sizeof kVariable - 1) != 0) {
+    if (std::strncmp(*variable, kVariable, sizeof kVariable - 1) == 0) {
+      before = *variable + sizeof kVariable - 1;
+    } else {
       variables[kept++] = *variable;
-      continue;
     }
-    const char* value = *variable + sizeof kVariable - 1;
-    if (std::strstr(value, kAnySetting) != nullptr || std::strlen(value) > kLongestValue) return;
-    if (value[0] == '\0') continue;
-    std::strcat(setting, value);
-    std::strcat(setting, ":");
   }
-  if (!wants_large_heap(argc, argv) || !large_pages_on_request()) return;
+  if (std::strstr(before, kAnySetting) != nullptr || std::strlen(before) > kLongestValue) return;
+  if (!large_pages_on_request()) return;
   if (readlink("/proc/self/exe", program, sizeof program - 1) <= 0) return;
+  std::strcpy(setting, kVariable);
+  std::strcat(setting, before);
+  if (before[0] != '\0') std::strcat(setting, ":");
   std::strcat(setting, kSetting);
   variables[kept] = setting;
   execve(program, argv, variables);
 }
 
-#ifdef STANCHION_HEAP_IS_GIVEN
-#define STANCHION_BEFORE_ALL_INITIALIZERS [[maybe_unused]]
-#else
-#define STANCHION_BEFORE_ALL_INITIALIZERS [[gnu::used, gnu::section(".preinit_array")]]
+#ifndef STANCHION_HEAP_IS_GIVEN
+[[gnu::used, gnu::section(".preinit_array")]] void (*const kBegin)(int, char**,
+                                                                   char**) = begin_with_large_heap;
 #endif
-STANCHION_BEFORE_ALL_INITIALIZERS void (*const kBegin)(int, char**, char**) = begin_with_large_heap;
 
 }  // namespace
 }  // namespace stanchion
