@@ -7,14 +7,12 @@
 #include "model/frequency.hpp"
 #include "report/answer_svg.hpp"
 #include "report/chart.hpp"
-#include "report/label_layout.hpp"
 #include "report/numbers.hpp"
 
 namespace stanchion {
 namespace {
 
-constexpr double kHeight = 246, kListed = 82, kCounted = 140, kHalf = 15, kAxis = 182, kTextSize = 13;
-constexpr const char* kRound = "M-4.5 0a4.5 4.5 0 1 0 9 0a4.5 4.5 0 1 0-9 0Z";
+constexpr double kHeight = 246, kListed = 82, kCounted = 140, kHalf = 15, kAxis = 182;
 constexpr const char* kCross = "M-5.5-5.5L5.5 5.5M-5.5 5.5L5.5-5.5";
 constexpr const char* kDiamond = "M0-7L7 0L0 7L-7 0Z";
 
@@ -91,7 +89,7 @@ class AuditChart {
       if (at - last < 0.5 && crossed == last_crossed) continue;  // thousands of values, one a pixel
       last = at;
       last_crossed = crossed;
-      chart_.mark(at, kListed, crossed ? kCross : kRound, crossed ? "c-wrong" : "s-point",
+      chart_.mark(at, kListed, crossed ? kCross : Chart::kDisc, crossed ? "c-wrong" : "s-point",
                   fmt::format("listed: {:.10g}", shown(value)));
     }
   }
@@ -126,17 +124,7 @@ class AuditChart {
     Offset untold = 0;
     for (const AuditGap& gap : gaps) {
       const double middle = (x_low(gap) + x_high(gap)) / 2;
-      const std::string words = words_of(gap);
-      const auto label =
-          layout.place({middle, foot}, 0, text_width(words, kTextSize, true), kTextSize + 3, 66, {0, -9});
-      if (!label) {
-        ++untold;
-        continue;
-      }
-      chart_.text((label->box.left + label->box.right) / 2, label->box.bottom - 4, "middle", words,
-                  "c-strong");
-      chart_.line(std::clamp(middle, label->box.left, label->box.right), label->box.bottom, middle,
-                  kCounted - kHalf, "c-level");
+      if (!chart_.name(layout, middle, foot, 66, words_of(gap), kCounted - kHalf)) ++untold;
     }
     if (untold > 0)
       chart_.text(

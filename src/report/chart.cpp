@@ -58,6 +58,18 @@ void Chart::text(double at_x, double at_y, const char* anchor, std::string_view 
                       at_x, at_y, anchor, escaped(words));
 }
 
+bool Chart::name(LabelLayout& layout, double at_x, double foot, double reach, const std::string& words,
+                 double end) {
+  constexpr double kTextSize = 13;
+  const auto label =
+      layout.place({at_x, foot}, 0, text_width(words, kTextSize, true), kTextSize + 3, reach, {0, -9});
+  if (!label) return false;
+  const Box& box = label->box;
+  text((box.left + box.right) / 2, box.bottom - 4, "middle", words, "c-strong");
+  line(std::clamp(at_x, box.left, box.right), box.bottom, at_x, end, "c-level");
+  return true;
+}
+
 void Chart::axis(double y, const std::string& name, bool whole) {
   line(kLeft, y, kWidth - kRight, y, "c-axis");
   const double step = whole ? std::max(1.0, tick_step(high_ - low_, 12)) : tick_step(high_ - low_, 6);

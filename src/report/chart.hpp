@@ -4,6 +4,8 @@
 #include <string>
 #include <string_view>
 
+#include "report/label_layout.hpp"
+
 namespace stanchion {
 
 /// 1, 2 or 5 times a power of ten, so that about `many` of them span `range`.
@@ -13,6 +15,7 @@ double tick_step(double range, int many);
 class Chart {
  public:
   static constexpr double kWidth = 760, kLeft = 84, kRight = 24;
+  static constexpr const char* kDisc = "M-4.5 0a4.5 4.5 0 1 0 9 0a4.5 4.5 0 1 0-9 0Z";
 
   Chart(double height, const std::string& title, double low, double high);
 
@@ -24,6 +27,10 @@ class Chart {
   /// `shape` as path data around the place, "M-4-4L4 4".
   void mark(double at_x, double at_y, const char* shape, const char* kind, const std::string& title);
   void text(double at_x, double at_y, const char* anchor, std::string_view words, const char* kind = "");
+  /// Words in bold no more than `reach` above (x, foot), and a line from them down to `end`; false, and
+  /// nothing drawn, where there is no room.
+  bool name(LabelLayout& layout, double at_x, double foot, double reach, const std::string& words,
+            double end);
   /// Ticks at round numbers below y, and the name of the axis below them; whole numbers only if `whole`.
   void axis(double y, const std::string& name, bool whole);
   std::string done();

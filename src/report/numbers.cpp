@@ -21,11 +21,11 @@ std::string with_prefix(double number, const char* unit) {
 }
 
 std::string rounded_towards(double number, int digits, double direction) {
-  const double size = std::fabs(number);
+  if (digits > 15) return exact(number);
   std::string text = fmt::format("{:.{}g}", number, digits);
-  if (!(size > 0) || !std::isfinite(number) || digits > 15) return digits > 15 ? exact(number) : text;
+  if (number == 0 || !std::isfinite(number)) return text;
   // Of the last digit one more where the nearest number of so many digits lies on the other side.
-  const double unit = std::pow(10.0, std::floor(std::log10(size)) - digits + 1);
+  const double unit = std::pow(10.0, std::floor(std::log10(std::fabs(number))) - digits + 1);
   for (int more = 1; direction * (std::strtod(text.c_str(), nullptr) - number) < 0 && more < 4; ++more)
     text = fmt::format("{:.{}g}", number + direction * more * unit / 2, digits);
   return direction * (std::strtod(text.c_str(), nullptr) - number) < 0 ? exact(number) : text;

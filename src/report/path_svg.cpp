@@ -4,14 +4,12 @@
 
 #include "report/answer_svg.hpp"
 #include "report/chart.hpp"
-#include "report/label_layout.hpp"
 #include "report/numbers.hpp"
 
 namespace stanchion {
 namespace {
 
-constexpr double kTop = 62, kTextSize = 13;
-constexpr const char* kRound = "M-4.5 0a4.5 4.5 0 1 0 9 0a4.5 4.5 0 1 0-9 0Z";
+constexpr double kTop = 62;
 constexpr const char* kSquare = "M-4.5-4.5H4.5V4.5H-4.5Z";
 constexpr const char* kOpen = "M-5-9H5V9H-5Z";
 
@@ -88,21 +86,14 @@ class PathChart {
       chart_.line(x(k), y(one.inertia.negative), x(k), y(together), "c-level");
       chart_.mark(x(k), y(together), kSquare, "c-found", title);
     }
-    chart_.mark(x(k), y(one.inertia.negative), kRound, "s-point", title);
+    chart_.mark(x(k), y(one.inertia.negative), Chart::kDisc, "s-point", title);
   }
 
   void firsts() {
     LabelLayout layout({4, 4, Chart::kWidth - 4, kTop - 12});
     layout.keep_clear({0, kTop - 32, Chart::kLeft - 10, kTop - 12});  // the name of the other axis
     const auto at = [&](Index number, const std::string& words) {
-      const double where = x(static_cast<std::size_t>(number) - 1);
-      const double width = text_width(words, kTextSize, true);
-      const auto label = layout.place({where, kTop - 12}, 0, width, kTextSize + 3, 60, {0, -9});
-      if (!label) return;
-      chart_.text((label->box.left + label->box.right) / 2, label->box.bottom - 4, "middle", words,
-                  "c-strong");
-      chart_.line(std::clamp(where, label->box.left, label->box.right), label->box.bottom, where, base_,
-                  "c-level");
+      chart_.name(layout, x(static_cast<std::size_t>(number) - 1), kTop - 12, 60, words, base_);
     };
     if (!path_.first_not_definite)
       chart_.text((Chart::kLeft + Chart::kWidth - Chart::kRight) / 2, kTop - 12, "middle",
