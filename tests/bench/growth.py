@@ -13,6 +13,7 @@ import statistics
 import subprocess
 
 import picture
+import tables
 
 LADDERS = {
     "plate": [12_500, 25_000, 50_000, 100_000, 200_000, 400_000, 800_000],
@@ -30,8 +31,7 @@ def measure(program, model, unknowns, threads):
     """One process, one repetition."""
     command = [program, model, str(unknowns), "--definite", "--certified", "--node-map", "--threads", str(threads), "--repeat", "1"]
     record = json.loads(subprocess.run(command, check=True, capture_output=True, text=True).stdout)
-    record["seconds"] = sum(record[f"{phase}_seconds"] for phase in ("form", "order", "analyse", "numeric"))
-    return record
+    return {**record, "seconds": tables.whole(record)}
 
 
 def rows_of(program, model, repeat, threads):
