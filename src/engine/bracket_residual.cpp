@@ -106,13 +106,16 @@ class ResidualBrackets {
       stand_on(std::move(**near));
       return {};
     }
-    if (0 - base_->tau == start_) {
-      search_.emplace(counter_, *base_, request_, context_, pool_, outcome_);
-      return {};
+    return stand_at_start();
+  }
+
+  Status stand_at_start() {
+    if (0 - base_->tau != start_) {
+      auto again = base_at(counter_, start_, pool_, outcome_);
+      if (!again.ok()) return again.status();
+      if (*again) base_ = std::move(**again);  // else the values are seen from beyond 0
     }
-    auto again = base_at(counter_, start_, pool_, outcome_);
-    if (!again.ok()) return again.status();
-    if (*again) stand_on(std::move(**again));
+    stand_on(std::move(*base_));
     return {};
   }
 

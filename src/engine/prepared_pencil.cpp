@@ -310,22 +310,24 @@ Offset PreparedPencil::bytes_side_by_side(int many, int threads) const {
 }
 
 Result<std::optional<DefiniteBase>> PreparedPencil::definite_base(double factor, double smallest_eigenvalue,
-                                                                  ThreadPool& pool, Outcome& outcome) {
+                                                                  bool prove, ThreadPool& pool,
+                                                                  Outcome& outcome) {
   const double spent_before = risk_->spent();
-  DefiniteBaseOptions options{factor_options_, smallest_eigenvalue, risk_.get(), seed_};
+  DefiniteBaseCost cost;
+  const DefiniteBaseOptions options{factor_options_, smallest_eigenvalue, risk_.get(), seed_, prove, &cost};
   auto base = DefiniteBase::make(analysis_, combination(factor), options, pool);
   if (!base.ok()) return base.status();
-  ++outcome.work.factorizations;
-  outcome.memory.forecast = std::max(outcome.memory.forecast,
-                                     resident_before_ + with_allowance(analysis_.forecast.peak_bytes_solve));
+  outcome.work.factorizations += cost.factorizations;
+  outcome.timings.factor += cost.factor_seconds;
+  outcome.timings.certify += cost.certify_seconds;
+  const Offset beside = cost.factorizations > 1 ? analysis_.forecast.peak_bytes_count : 0;
+  outcome.memory.forecast =
+      std::max(outcome.memory.forecast,
+               resident_before_ + with_allowance(analysis_.forecast.peak_bytes_solve + beside));
   outcome.risk = risk_->spent();
   if (risk_->spent() > spent_before) {
     outcome.events.push_back({has_second_ ? std::optional(factor) : std::nullopt,
                               risk_->spent() - spent_before, base->has_value()});
-  }
-  if (*base) {
-    outcome.timings.factor += (*base)->factor_seconds();
-    outcome.timings.certify += (*base)->certify_seconds();
   }
   return base;
 }

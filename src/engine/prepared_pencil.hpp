@@ -69,9 +69,10 @@ class PreparedPencil {
   Offset bytes_side_by_side(int many, int threads) const;
 
   /// K with what is added plus `factor` times the second matrix, definite, with its factor kept; nothing when
-  /// it is not definite. `smallest_eigenvalue`: a proved bound of it, or 0. Charged to the document where a
-  /// test is needed. The base refers to this pencil and to `pool`.
-  Result<std::optional<DefiniteBase>> definite_base(double factor, double smallest_eigenvalue,
+  /// it is not definite. `smallest_eigenvalue`: a proved bound of it, or 0; where that says too little,
+  /// `prove` looks for a better one. Charged to the document where a test is needed. The base refers to this
+  /// pencil and to `pool`.
+  Result<std::optional<DefiniteBase>> definite_base(double factor, double smallest_eigenvalue, bool prove,
                                                     ThreadPool& pool, Outcome& outcome);
 
   /// The inverse of K with what is added plus `factor` times the second matrix, for estimates; nothing when

@@ -40,8 +40,8 @@ class BaseSettler {
     }
     if (counter_.kind() == CountKind::kBelow) return settle_below();
     const double origin = counter_.origin();  // 0 unless K alone is not definite
-    auto base = counter_.pencil().definite_base(counter_.factor_of(origin), counter_.stiffness_bound(), pool_,
-                                                outcome_);
+    auto base = counter_.pencil().definite_base(counter_.factor_of(origin), counter_.stiffness_bound(),
+                                                small(counter_), pool_, outcome_);
     if (!base.ok()) return base.status();
     if (*base) take(std::move(**base), -origin);
     if (counter_.kind() == CountKind::kAbove) return base_ ? settle_elastic() : Status{};
@@ -120,16 +120,17 @@ class BaseSettler {
 
   Result<bool> try_tau(double tau) {
     double bound = 0;
-    if (small(counter_)) {
-      auto found = counter_.inertia_at(-tau, true);
+    if (tau == 0 && small(counter_)) {
+      auto found = counter_.inertia_at(0, true);
       if (!found.ok()) return found.status();
       bound = found->certificate.smallest_eigenvalue_above.value_or(0);
       if (!(bound > 0)) {
-        if (tau == 0) remember_zero(*found);
+        remember_zero(*found);
         return false;
       }
     }
-    auto base = counter_.pencil().definite_base(counter_.factor_of(-tau), bound, pool_, outcome_);
+    auto base =
+        counter_.pencil().definite_base(counter_.factor_of(-tau), bound, small(counter_), pool_, outcome_);
     if (!base.ok()) return base.status();
     if (!*base) return false;
     take(std::move(**base), tau);
@@ -152,19 +153,11 @@ class BaseSettler {
 Result<std::optional<SpectralBase>> base_at(PencilCounter& counter, double sigma, ThreadPool& pool,
                                             Outcome& outcome) {
   using Nothing = std::optional<SpectralBase>;
-  const auto unless_memory = [](const Status& status) -> Result<Nothing> {
-    if (status.kind() == StatusKind::kResourceLimit) return Nothing();
-    return status;
-  };
-  double bound = 0;
-  if (small(counter)) {
-    auto found = counter.inertia_at(sigma, true);
-    if (!found.ok()) return unless_memory(found.status());
-    bound = found->certificate.smallest_eigenvalue_above.value_or(0);
-    if (!(bound > 0)) return Nothing();
+  auto base = counter.pencil().definite_base(counter.factor_of(sigma), 0, small(counter), pool, outcome);
+  if (!base.ok()) {
+    if (base.status().kind() == StatusKind::kResourceLimit) return Nothing();
+    return base.status();
   }
-  auto base = counter.pencil().definite_base(counter.factor_of(sigma), bound, pool, outcome);
-  if (!base.ok()) return unless_memory(base.status());
   if (!*base) return Nothing();
   return Nothing(SpectralBase{std::move(**base), counter.pencil().second(-counter.factor_of(1)), -sigma, 0});
 }

@@ -12,11 +12,19 @@
 
 namespace stanchion {
 
+/// What making a base took, whether it succeeded or not.
+struct DefiniteBaseCost {
+  Index factorizations = 0;
+  double factor_seconds = 0, certify_seconds = 0;
+};
+
 struct DefiniteBaseOptions {
   FactorOptions factor;            ///< definite and keep_factor are set here
   double smallest_eigenvalue = 0;  ///< proved lower bound of the scaled matrix; 0: none known
   RiskBudget* risk = nullptr;  ///< for the relative test where no proof is close enough; null: proofs only
   std::uint64_t seed = 1;
+  bool prove = false;  ///< where the bound known is not close enough: one or two factorizations for a better
+  DefiniteBaseCost* cost = nullptr;  ///< null: not asked
 };
 
 /// B = M (I + F) M^T with M = L sqrt(D), ||F|| <= relative() < 1 and ||M^-1|| <= inverse_norm(). Vectors are
@@ -25,7 +33,7 @@ class DefiniteBase {
  public:
   /// Nothing when B is not definite, or cannot be shown so. `analysis`, `pool` and what `matrix` refers to
   /// outlive the object. Errors: those of factorize() and certify_relative(). Cost: one factorization, kept,
-  /// and for the relative test two passes over L more.
+  /// those of a proof if asked, and for the relative test two passes over L more.
   static Result<std::optional<DefiniteBase>> make(const Analysis& analysis, const ShiftedMatrix& matrix,
                                                   const DefiniteBaseOptions& options, ThreadPool& pool);
 
@@ -42,21 +50,22 @@ class DefiniteBase {
   /// What backs B definite and the two norms.
   const Certificate& certificate() const { return certificate_; }
   Index rows() const { return factorization_->factor->rows; }
-  double factor_seconds() const { return factorization_->seconds; }
-  double certify_seconds() const { return certify_seconds_; }
   ThreadPool& pool() const { return *pool_; }
 
  private:
   DefiniteBase() = default;
+  Result<bool> certify(const Analysis& analysis, const DefiniteBaseOptions& options, DefiniteBaseCost& cost);
   bool by_proof(double smallest_eigenvalue);
-  Result<bool> by_test(const Analysis& analysis, const DefiniteBaseOptions& options);
+  Result<double> proved_bound(const Analysis& analysis, const DefiniteBaseOptions& options,
+                              DefiniteBaseCost& cost) const;
+  Result<bool> by_test(const Analysis& analysis, const DefiniteBaseOptions& options, DefiniteBaseCost& cost);
 
   ShiftedMatrix matrix_;
   ThreadPool* pool_ = nullptr;
   std::unique_ptr<Factorization> factorization_;
   std::unique_ptr<BlockSolver> solver_;
   std::vector<double> inverse_root_;  ///< 1 / sqrt(d) by position
-  double solve_error_ = 0, relative_ = 1, inverse_norm_ = 0, certify_seconds_ = 0;
+  double solve_error_ = 0, relative_ = 1, inverse_norm_ = 0;
   Certificate certificate_;
 };
 

@@ -126,6 +126,7 @@ class CylinderTest(ProgramTest):
         around = self.expect(0, "bracket", *model, "--from", -end, "--to", end)
         self.assertLess(both["complete"]["from"], -44)
         for document in first, below, mirrored, both, around:
+            self.assertEqual({value["level"] for value in document["critical"]} | {document["complete"]["level"]}, {"proved"})
             self.assertEqual(sum(value["multiplicity"] for value in document["critical"]), document["complete"]["count"])
             self.assertLessEqual(document["work"]["factorizations"], 6 + len(document["critical"]) / 4)
             self.assertLessEqual({value["multiplicity"] for value in document["critical"]}, {1, 2})

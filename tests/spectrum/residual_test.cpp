@@ -258,5 +258,41 @@ TEST(DefiniteBase, AProvedBoundIsUsedWhereItIsCloseEnough) {
   EXPECT_FALSE(*none);
 }
 
+/// A base without a risk to charge: by a proof of its own, or none.
+Result<std::optional<DefiniteBase>> proved_base(PencilParts& parts, DefiniteBaseCost& cost) {
+  DefiniteBaseOptions options;
+  options.prove = true;
+  options.cost = &cost;
+  return DefiniteBase::make(parts.analysis, parts.base(), options, parts.pool);
+}
+
+TEST(DefiniteBase, AProofOfItsOwnNeedsAnEigenvalueWellAboveTheBackwardError) {
+  const auto parts_with = [](double lowest) {
+    const std::vector<Triplet> entries{{0, 0, 1.0}, {1, 1, 0.5}, {2, 2, lowest}};
+    return std::make_unique<PencilParts>(
+        KnownPencil{from_triplets(3, entries), from_triplets(3, entries), {}});
+  };
+  DefiniteBaseCost cost;
+  const auto easy_parts = parts_with(0.25);
+  auto easy = proved_base(*easy_parts, cost);
+  ASSERT_TRUE(easy.ok() && *easy);
+  EXPECT_EQ((*easy)->certificate().level, Level::kProved);
+  EXPECT_EQ(cost.factorizations, 2);
+  EXPECT_LT((*easy)->relative(), 0.01);
+  const double error = *(*easy)->certificate().error_bound;
+  // The bound may not be above the smallest eigenvalue, which is the smallest entry, wherever that lies.
+  for (const double many : {300.0, 100.0, 20.0, 10.0, 3.0, 1.0}) {
+    DefiniteBaseCost spent;
+    const auto parts = parts_with(many * error);
+    auto base = proved_base(*parts, spent);
+    ASSERT_TRUE(base.ok());
+    EXPECT_EQ(base->has_value(), many > 16) << many;
+    EXPECT_EQ(spent.factorizations, many > 256 ? 2 : 3);
+    if (*base) {
+      EXPECT_LE(*(*base)->certificate().smallest_eigenvalue_above, many * error);
+    }
+  }
+}
+
 }  // namespace
 }  // namespace stanchion
