@@ -33,7 +33,8 @@ bool exists_but_not_regular(const std::string& path) {
 Result<AnswerFile> AnswerFile::open(const std::string& path) {
   AnswerFile answer;
   answer.path_ = path;
-  const std::string target = behind_links(path);
+  answer.target_ = behind_links(path);
+  const std::string& target = answer.target_;
   if (!exists_but_not_regular(target)) {
     answer.file_ = std::make_unique<OutputFile>(target, false);
     if (!answer.file_->ok()) return answer.file_->commit();
@@ -47,13 +48,20 @@ Result<AnswerFile> AnswerFile::open(const std::string& path) {
                            path, "name a file in an existing folder that you may write to");
 }
 
+void AnswerFile::remove_older() const {
+  if (file_) std::remove(target_.c_str());
+}
+
 Status AnswerFile::commit(const std::string& text) {
   if (file_) {
     file_->write(text);
-    return file_->commit();
+    Status status = file_->commit();
+    committed_ = status.ok();
+    return status;
   }
   const bool written = std::fwrite(text.data(), 1, text.size(), device_.get()) == text.size();
-  if (written && std::fflush(device_.get()) == 0) return {};
+  committed_ = written && std::fflush(device_.get()) == 0;
+  if (committed_) return {};
   return Status::resource_limit("write-failed",
                                 std::string("the file could not be written: ") + std::strerror(errno), path_,
                                 "name a place that can take it");

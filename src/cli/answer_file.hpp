@@ -17,11 +17,16 @@ class AnswerFile {
   /// Bad usage ("cannot-write") when nothing can be written there.
   static Result<AnswerFile> open(const std::string& path);
 
-  /// Resource limit ("write-failed") when the disk does not take `text`; an older file is then untouched.
+  /// Removes an older file of this name, so that it cannot pass for the answer of this run.
+  void remove_older() const;
+
+  /// Resource limit ("write-failed") when the disk does not take `text`; nothing then appears. Once only.
   Status commit(const std::string& text);
+  bool committed() const { return committed_; }
 
  private:
-  std::string path_;
+  bool committed_ = false;
+  std::string path_, target_;  ///< as typed, and behind links
   std::unique_ptr<OutputFile> file_;
   std::shared_ptr<std::FILE> device_;
 };

@@ -53,6 +53,9 @@ class Arguments {
   /// Printed below the options.
   void closing(const std::string& text);
 
+  /// After a command line that was refused: puts what was read of it where it belongs.
+  void take_what_was_read();
+
   /// Turns the texts given for `real` and `whole` options into numbers; the first that is none is the
   /// failure.
   Status convert_numbers() const;

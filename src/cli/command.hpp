@@ -27,6 +27,12 @@ class Command {
   virtual bool requestable() const { return false; }
   /// What is wrong with the options as a whole, without reading a file; run() says it as well.
   virtual Status check_options() { return {}; }
+  /// Tells the files asked for that `why` stood before the work; run() does so itself. Options may be known
+  /// in part only.
+  virtual void refuse(const Status& why, const Call& call) {
+    (void)why;
+    (void)call;
+  }
   /// Does the work and prints; returns the exit code, or the failure for the caller to print.
   virtual Result<int> run(const Call& call) = 0;
 };

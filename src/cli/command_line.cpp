@@ -115,6 +115,15 @@ void Arguments::closing(const std::string& text) {
   parser_->app->footer(text);
 }
 
+void Arguments::take_what_was_read() {
+  for (CLI::Option* option : parser_->app->get_options()) {
+    try {
+      if (option->count() > 0) option->run_callback();
+    } catch (const CLI::ParseError&) {  // this one is what was refused
+    }
+  }
+}
+
 Status Arguments::convert_numbers() const {
   for (const auto& conversion : conversions_) {
     if (Status status = conversion(); !status.ok()) return status;
@@ -267,10 +276,20 @@ Result<int> run_command_line(CommandFactory all_commands, const std::vector<std:
   app.get_formatter()->column_width(34);
   const auto commands = all_commands();
   const auto declared = declare_all(app, commands);
+  const auto refused = [&](const Status& why, const std::vector<std::string>& arguments) -> Result<int> {
+    if (const DeclaredCommand* asked = selected(app, declared)) {
+      asked->arguments->take_what_was_read();
+      asked->command->refuse(why, Call{arguments, {}});
+    }
+    return why;
+  };
   const auto configured = configure(tables_of(declared), typed);
-  if (!configured.ok()) return configured.status();
+  if (!configured.ok()) {
+    (void)parse(app, declared, typed, false);  // for the places that it names
+    return refused(configured.status(), typed);
+  }
   const auto printed = parse(app, declared, configured->arguments, true);
-  if (!printed.ok()) return printed.status();
+  if (!printed.ok()) return refused(printed.status(), configured->arguments);
   if (*printed) return **printed;
   if (configured->print) {
     const Status shown = print_result(*configured->print);
@@ -278,7 +297,8 @@ Result<int> run_command_line(CommandFactory all_commands, const std::vector<std:
   }
   const DeclaredCommand* asked = selected(app, declared);
   if (asked == nullptr) return Status::internal("no command was selected");
-  if (Status status = asked->arguments->convert_numbers(); !status.ok()) return status;
+  if (Status status = asked->arguments->convert_numbers(); !status.ok())
+    return refused(status, configured->arguments);
   return asked->command->run(
       Call{configured->arguments, [all_commands] { return request_rules(all_commands); }});
 }

@@ -5,12 +5,10 @@
 #include <algorithm>
 #include <new>
 
-#include "cli/answer_file.hpp"
 #include "cli/certificate_file.hpp"
 #include "cli/interrupt.hpp"
 #include "cli/log_file.hpp"
 #include "cli/mode_files.hpp"
-#include "cli/output_targets.hpp"
 #include "cli/progress_line.hpp"
 #include "cli/sweep_results.hpp"
 #include "cli/terminal.hpp"
@@ -89,67 +87,6 @@ Result<Judgement> build_judgement(const OutputOptions& output, bool symmetric_pa
   if (Status status = check_applicable(*expectation, question); !status.ok()) return status;
   judgement.expectation = *expectation;
   return judgement;
-}
-
-/// Every file that is to be written, opened ahead of the work.
-struct Targets {
-  std::optional<AnswerFile> json, html, junit, csv, vtu, view, certificate, witness, svg, modes;
-  std::vector<CertifiedFile> support_files;  ///< for the certificate
-};
-
-Status refuse_dash(const char* option, const std::optional<std::string>& path) {
-  if (path != "-") return {};
-  return Status::bad_usage("bad-argument", "this is written to a file, not to standard output", option,
-                           "name a file");
-}
-
-Status open_targets(const OutputOptions& output, const Request& request, Targets& targets) {
-  const InputRequest& input = request.input;
-  std::vector<std::string> read = files_read(input);
-  read.insert(read.end(), request.steps.begin(), request.steps.end());
-  if (!request.audit.values.empty()) read.push_back(request.audit.values);
-  for (const Status& status :
-       {refuse_dash("--certificate", output.certificate), refuse_dash("--witness", output.witness),
-        refuse_dash("--html", output.html), refuse_dash("--junit", output.junit),
-        refuse_dash("--csv", output.csv), refuse_dash("--vtu", output.vtu),
-        refuse_dash("--view", output.view), refuse_dash("--svg", output.svg),
-        refuse_dash("--results", output.results), refuse_dash("--modes", output.modes),
-        check_targets_differ({{"--json", output.json},
-                              {"--html", output.html},
-                              {"--junit", output.junit},
-                              {"--csv", output.csv},
-                              {"--vtu", output.vtu},
-                              {"--view", output.view},
-                              {"--certificate", output.certificate},
-                              {"--witness", output.witness},
-                              {"--svg", output.svg},
-                              {"--results", output.results},
-                              {"--modes", output.modes},
-                              {"--log", output.log}})}) {
-    if (!status.ok()) return status;
-  }
-  const auto open = [&read](const char* option, const std::optional<std::string>& path,
-                            std::optional<AnswerFile>& file) {
-    auto opened = open_target(option, path, read);
-    if (opened.ok()) file = std::move(*opened);
-    return opened.status();
-  };
-  if (Status status = open("--json", output.json, targets.json); !status.ok()) return status;
-  if (Status status = open("--html", output.html, targets.html); !status.ok()) return status;
-  if (Status status = open("--junit", output.junit, targets.junit); !status.ok()) return status;
-  if (Status status = open("--csv", output.csv, targets.csv); !status.ok()) return status;
-  if (Status status = open("--vtu", output.vtu, targets.vtu); !status.ok()) return status;
-  if (Status status = open("--view", output.view, targets.view); !status.ok()) return status;
-  if (Status status = open("--certificate", output.certificate, targets.certificate); !status.ok())
-    return status;
-  if (Status status = open("--witness", output.witness, targets.witness); !status.ok()) return status;
-  if (Status status = open("--svg", output.svg, targets.svg); !status.ok()) return status;
-  if (Status status = open("--modes", output.modes, targets.modes); !status.ok()) return status;
-  if (Status status = check_not_read("--results", output.results, read); !status.ok()) return status;
-  if (!output.certificate) return {};
-  auto support = certify_support_files(request);
-  if (support.ok()) targets.support_files = std::move(*support);
-  return support.status();
 }
 
 /// Writes the witness, or says that there is none; the file then does not appear.
@@ -316,6 +253,22 @@ Status QuestionCommand::check_options() {
   return make_request().status();
 }
 
+void QuestionCommand::refuse(const Status& why, const Call& call) {
+  Targets targets;
+  refuse(why, call, targets);
+}
+
+void QuestionCommand::refuse(const Status& why, const Call& call, Targets& targets) const {
+  const auto files = files_named(request_);
+  if (!targets.opened) {
+    std::vector<std::string> read;
+    for (const TableRecord& file : files) read.push_back(file.path);
+    open_for_refusal(output_, call.arguments, read, targets);
+  }
+  deliver_refusal(targets, {name(), call.arguments, output_.title, output_.reference, files, why,
+                            exit_code(why.kind()), targets.answered});
+}
+
 Result<int> QuestionCommand::run(const Call& call) {
   CancellationToken token;
   const InterruptGuard guard(token);  // before anything is opened: a request to stop leaves nothing behind
@@ -324,23 +277,26 @@ Result<int> QuestionCommand::run(const Call& call) {
                              "--progress-fd", "give one from 3 that the program was started with");
   }
   ProgressPipe pipe(static_cast<int>(output_.progress_fd.value_or(-1)));
+  Targets targets;
   auto code = [&]() -> Result<int> {
     try {
-      return answer(call, pipe, token);
+      return answer(call, pipe, token, targets);
     } catch (const std::bad_alloc&) {
       return out_of_memory();
     }
   }();
-  if (!code.ok()) pipe.fail(code.status());
+  if (code.ok()) return code;
+  pipe.fail(code.status());
+  refuse(code.status(), call, targets);
   return code;
 }
 
-Result<int> QuestionCommand::answer(const Call& call, ProgressPipe& pipe, const CancellationToken& token) {
+Result<int> QuestionCommand::answer(const Call& call, ProgressPipe& pipe, const CancellationToken& token,
+                                    Targets& targets) {
   auto request = make_request();
   if (!request.ok()) return request.status();
   const auto judgement = build_judgement(output_, request_.symmetric_part, question_);
   if (!judgement.ok()) return judgement.status();
-  Targets targets;
   if (Status status = open_targets(output_, *request, targets); !status.ok()) return status;
   const auto log = LogFile::open(output_.log);
   if (!log.ok()) return log.status();
@@ -352,6 +308,7 @@ Result<int> QuestionCommand::answer(const Call& call, ProgressPipe& pipe, const 
     log->line(outcome.status().to_string());
     return outcome.status();
   }
+  targets.answered = true;
   outcome->command = name();
   outcome->arguments = call.arguments;
   outcome->title = output_.title;

@@ -4,20 +4,12 @@
 
 #include "base/cancellation.hpp"
 #include "cli/command.hpp"
+#include "cli/question_targets.hpp"
 #include "cli/request_options.hpp"
 #include "engine/pipeline.hpp"
 #include "jobs/progress_pipe.hpp"
 
 namespace stanchion::cli {
-
-/// Where the answer goes, as typed.
-struct OutputOptions {
-  std::optional<std::string> json, html, junit, csv, vtu, view, certificate, witness, log, title, reference,
-      expectation;
-  std::optional<std::string> svg, results, modes;
-  std::optional<std::int64_t> progress_fd;
-  bool quiet = false;
-};
 
 class QuestionCommand : public Command {
  public:
@@ -28,11 +20,13 @@ class QuestionCommand : public Command {
   void declare(Arguments& arguments) override;
   bool requestable() const override { return true; }
   Status check_options() override;
+  void refuse(const Status& why, const Call& call) override;
   Result<int> run(const Call& call) override;
 
  private:
   Result<Request> make_request() const;
-  Result<int> answer(const Call& call, ProgressPipe& pipe, const CancellationToken& token);
+  Result<int> answer(const Call& call, ProgressPipe& pipe, const CancellationToken& token, Targets& targets);
+  void refuse(const Status& why, const Call& call, Targets& targets) const;
   Result<Outcome> ask(const Request& request, const class LogFile& log, ProgressPipe& pipe,
                       const CancellationToken& token) const;
 

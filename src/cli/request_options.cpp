@@ -276,4 +276,25 @@ Result<Request> build_request(const RequestOptions& options, Question question) 
   return request;
 }
 
+std::vector<TableRecord> files_named(const RequestOptions& options) {
+  std::vector<TableRecord> files;
+  const auto add = [&files](const char* role, const std::string& path) { files.push_back({role, path, {}}); };
+  if (options.stiffness) add("stiffness", *options.stiffness);
+  for (const std::string& step : options.steps) add("step", step);
+  if (options.list) {
+    add("list", *options.list);
+    const auto steps = read_path_list(*options.list);
+    for (const std::string& step : steps.ok() ? *steps : std::vector<std::string>()) add("step", step);
+  }
+  for (const std::string& text : options.added) add("added", text.substr(0, text.rfind(':')));
+  for (const auto& [role, path] :
+       {std::pair{"geometric", &options.geometric}, std::pair{"mass", &options.mass},
+        std::pair{"dofs", &options.dofs}, std::pair{"nodes", &options.nodes},
+        std::pair{"axes", &options.axes}, std::pair{"fix", &options.fix},
+        std::pair{"multipliers", &options.multipliers}, std::pair{"values", &options.spectrum.values}}) {
+    if (*path) add(role, **path);
+  }
+  return files;
+}
+
 }  // namespace stanchion::cli

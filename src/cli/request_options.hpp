@@ -9,6 +9,7 @@
 #include "cli/arguments.hpp"
 #include "cli/spectrum_options.hpp"
 #include "model/question.hpp"
+#include "stanchion/outcome.hpp"
 #include "stanchion/request.hpp"
 #include "stanchion/status.hpp"
 
@@ -30,5 +31,8 @@ void declare_request_options(Arguments& arguments, RequestOptions& options, Ques
 
 /// The validated request (see model/validate.hpp), or bad usage.
 Result<Request> build_request(const RequestOptions& options, Question question);
+
+/// Every file to be read that `options` name, with its role, whether or not they make a request.
+std::vector<TableRecord> files_named(const RequestOptions& options);
 
 }  // namespace stanchion::cli

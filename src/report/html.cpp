@@ -4,11 +4,10 @@
 
 #include <algorithm>
 
-#include "model/version.hpp"
 #include "report/answer_svg.hpp"
 #include "report/cause_words.hpp"
+#include "report/html_frame.hpp"
 #include "report/html_parts.hpp"
-#include "report/html_style.hpp"
 #include "report/markup.hpp"
 #include "report/numbers.hpp"
 #include "report/staircase_svg.hpp"
@@ -16,27 +15,6 @@
 
 namespace stanchion {
 namespace {
-
-/// A beam on two posts that stands level, one that has come off, one that is not drawn to its end.
-std::string verdict_mark(bool good, bool unresolved) {
-  const char* beam = unresolved ? "M6 20h22M36 20h4M46 20h4M56 20h4" : good ? "M6 20h54" : "M6 32L60 10";
-  const char* posts = unresolved ? "M16 22v34M50 30v4M50 42v4M50 52v4"
-                      : good     ? "M16 22v34M50 22v34"
-                                 : "M16 34v22M50 24v32";
-  return fmt::format(
-      "<svg class=\"{}\" viewBox=\"0 0 66 66\" role=\"img\" aria-label=\"{}\"><path d=\"{}\" "
-      "stroke=\"currentColor\" "
-      "stroke-width=\"6\" stroke-linecap=\"round\" fill=\"none\"/><path d=\"{}M4 60h58\" "
-      "stroke=\"currentColor\" "
-      "stroke-width=\"3\" stroke-linecap=\"round\" fill=\"none\"/></svg>",
-      unresolved ? "open"
-      : good     ? "clear"
-                 : "heed",
-      unresolved ? "unresolved"
-      : good     ? "good"
-                 : "not good",
-      beam, posts);
-}
 
 /// Level, risk and digits in one sentence.
 std::string standing(const Outcome& outcome) {
@@ -74,24 +52,12 @@ std::string standing(const Outcome& outcome) {
   return text;
 }
 
-std::string question_in_words(const Outcome& outcome) {
+std::string question_of(const Outcome& outcome) {
   const auto has = [&](const char* role) {
     return std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
                        [&](const InputRecord& input) { return input.role == role; });
   };
-  const std::string& c = outcome.command;
-  if (c == "check")
-    return outcome.located ? "Is K positive definite? If not: where, and why?" : "Is K positive definite?";
-  if (c == "locate") return "Which nodes carry the zero, negative and weak directions of K, and why?";
-  if (c == "forecast") return "What will a factorization of K take?";
-  const std::string subject = has("geometric") ? "critical factors of the pencil of K and G"
-                              : has("mass")    ? "eigenvalues of K - s M"
-                                               : "eigenvalues of K";
-  if (c == "count") return "How many " + subject + " lie below the values asked?";
-  if (c == "sweep") return "How does the number of " + subject + " grow over the range?";
-  if (c == "bracket") return "Between which bounds do the " + subject + " lie?";
-  if (c == "audit") return "Is the list of " + subject + " complete in its range?";
-  return "What was asked: " + c;
+  return question_in_words({outcome.command, outcome.located.has_value(), has("geometric"), has("mass")});
 }
 
 std::string question_to_html(const Outcome& outcome) {
@@ -99,14 +65,8 @@ std::string question_to_html(const Outcome& outcome) {
   const auto row = [&rows](const char* label, const std::string& text) {
     rows += fmt::format("<dt>{}</dt><dd>{}</dd>\n", label, text);
   };
-  row("question", escaped(question_in_words(outcome)));
-  std::string command = escaped(program_name());
-  for (const std::string& argument : outcome.arguments) {
-    const bool plain = argument.find_first_of(" \t\"'$*?;&|<>()") == std::string::npos && !argument.empty();
-    const std::string word = escaped(plain ? argument : "'" + argument + "'");
-    command += " " + (argument.rfind('-', 0) == 0 ? "<span class=\"num\">" + word + "</span>" : word);
-  }
-  row("as typed", fmt::format("<code>{}</code>", command));
+  row("question", escaped(question_of(outcome)));
+  row("as typed", command_to_html(outcome.arguments));
   const bool geometric = std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
                                      [](const InputRecord& i) { return i.role == "geometric"; });
   if (geometric) {
@@ -170,18 +130,6 @@ std::string chart_of(const Outcome& outcome) {
                    kWidth / 2, kHeight - 4);
 }
 
-/// A path may go on in the next line after each folder.
-std::string path_to_html(const std::string& path) {
-  std::string html;
-  for (std::size_t from = 0; from < path.size();) {
-    const std::size_t slash = path.find('/', from);
-    const std::size_t to = slash == std::string::npos ? path.size() : slash + 1;
-    html += escaped(path.substr(from, to - from)) + (to < path.size() ? "<wbr>" : "");
-    from = to;
-  }
-  return html;
-}
-
 std::string inputs_to_html(const Outcome& outcome) {
   std::string html =
       "<table class=\"inputs\"><tr><th>input</th><th>file</th><th class=\"right\">equations</th><th "
@@ -220,15 +168,12 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   const std::string title =
       outcome.title.value_or(outcome.inputs.empty() ? std::string("Result") : outcome.inputs.front().path);
 
-  std::string html =
-      "<!DOCTYPE html>\n<html lang=\"en\"><head><meta charset=\"utf-8\">\n"
-      "<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n";
-  html +=
-      fmt::format("<title>{}</title>\n<style>{}</style></head>\n<body><main>\n", escaped(title), kHtmlStyle);
-  html += fmt::format("<header class=\"top\"><h1>{}</h1><p>{}{} {}, {}</p></header>\n", escaped(title),
-                      outcome.reference ? "Reference: " + escaped(*outcome.reference) + " · " : "",
-                      program_name(), program_version(), escaped(outcome.command));
-  html += "<div class=\"verdict\">" + verdict_mark(good, unresolved) + "<div>\n";
+  std::string html;
+  html += "<div class=\"verdict\">" +
+          verdict_mark(unresolved ? Mark::kUnresolved
+                       : good     ? Mark::kGood
+                                  : Mark::kNotGood) +
+          "<div>\n";
   for (std::size_t k = 0; k < lead; ++k) {
     html += fmt::format("<p{}>{}</p>\n", k == 0 ? " class=\"lead\"" : "", flowing(blocks[k].text));
   }
@@ -260,11 +205,7 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   std::string open;
   for (const std::string& sentence : outcome.not_checked) open += "<li>" + flowing(sentence) + "</li>\n";
   html += band("Not checked", open.empty() ? open : "<ul>\n" + open + "</ul>\n");
-  html += fmt::format(
-      "<footer>Made by {} {}. This page stands alone: it loads nothing and runs "
-      "nothing.</footer>\n</main></body></html>\n",
-      program_name(), program_version());
-  return html;
+  return html_page(title, outcome.reference, outcome.command, html);
 }
 
 }  // namespace stanchion

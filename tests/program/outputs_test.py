@@ -29,13 +29,6 @@ class OutputsTest(ProgramTest):
             first.pop(varying), second.pop(varying)
         self.assertEqual(first, second)
 
-    def test_an_older_answer_survives_a_failure(self):
-        answer = self.folder / "answer.json"
-        answer.write_text("older")
-        self.expect_failure(2, r"[a-z-]+", "check", "nowhere.mtx", "--json", answer)
-        self.assertEqual(answer.read_text(), "older")
-        self.assertEqual(sorted(os.listdir(self.folder)), ["K.mtx", "answer.json"])
-
     def test_a_link_stays_a_link(self):
         (self.folder / "link.json").symlink_to("answer.json")
         self.expect_zero("check", self.stiffness, "--json", "link.json", "--quiet")

@@ -1,7 +1,6 @@
 """--html, --csv, --junit, --vtu, --view: well formed, alone, and saying what the JSON says."""
 
 import csv
-import html.parser
 import importlib
 import re
 import shutil
@@ -10,40 +9,8 @@ import subprocess
 import unittest
 import xml.etree.ElementTree
 
+from page_outline import outline
 from program import ProgramTest, read_json
-
-VOID = {"meta", "br", "wbr", "hr", "img", "input", "link", "path", "circle", "rect"}
-
-
-class Outline(html.parser.HTMLParser):
-    """Fails on tags that do not nest; collects text and attributes."""
-
-    def __init__(self):
-        super().__init__(convert_charrefs=True)
-        self.open, self.text, self.attributes, self.tags, self.headings = [], [], [], [], []
-
-    def handle_starttag(self, tag, attrs):
-        self.attributes += attrs
-        self.tags.append(tag)
-        if tag not in VOID:
-            self.open.append(tag)
-
-    def handle_startendtag(self, tag, attrs):
-        self.attributes += attrs
-
-    def handle_endtag(self, tag):
-        if tag in VOID:
-            return
-        assert self.open and self.open[-1] == tag, f"</{tag}> closes {self.open[-3:]}"
-        self.open.pop()
-
-    def handle_data(self, data):
-        if self.open and self.open[-1] == "style":
-            return
-        self.text.append(data)
-        if self.open and self.open[-1] == "h2":
-            self.headings.append(data)
-
 
 NUMBER = re.compile(r"\d+(?:[.,]\d+)*(?:e[+-]?\d+)?")
 
@@ -64,14 +31,6 @@ def with_one_digit_changed(lead):
     """Every text that differs from the lead in one digit."""
     for match in re.finditer(r"\d", lead):
         yield lead[:match.start()] + str((int(match.group()) + 1) % 10) + lead[match.end():]
-
-
-def outline(path):
-    page = Outline()
-    page.feed(path.read_text(encoding="utf-8"))
-    page.close()
-    assert page.open == [], page.open
-    return page
 
 
 def numpy_single(text):

@@ -12,6 +12,7 @@
 #include "report/markup.hpp"
 #include "report/model_view.hpp"
 #include "report/numbers.hpp"
+#include "report/refusal.hpp"
 #include "report/samples.hpp"
 #include "report/text.hpp"
 #include "report/vtu.hpp"
@@ -100,6 +101,37 @@ TEST(Html, WhatTheUserWroteIsEscaped) {
   EXPECT_NE(page.find("&lt;script&gt;alert(&#39;1&#39;)&lt;/script&gt; &amp; &quot;more&quot;"),
             std::string::npos);
   EXPECT_NE(page.find("a&lt;b&gt;.mtx"), std::string::npos);
+}
+
+Refusal refused(Status why) {
+  return {"check", {"check", "a b.mtx"}, std::nullopt, std::nullopt, {{"stiffness", "a<b>.mtx", ""}}, why, 2};
+}
+
+TEST(Refusal, PageAndSuiteEscapeWhatOthersWrote) {
+  const Refusal refusal =
+      refused(Status::bad_input("bad-entry", "'<b>' is no number", "a<b>.mtx:4", "x & y"));
+  for (const std::string& text : {refusal_to_html(refusal), refusal_to_junit(refusal)}) {
+    EXPECT_EQ(text.find("<b>"), std::string::npos);
+    for (const char* part :
+         {"&#39;&lt;b&gt;&#39; is no number", "a&lt;b&gt;.mtx:4", "x &amp; y", "bad-entry"})
+      EXPECT_NE(text.find(part), std::string::npos) << part;
+  }
+  EXPECT_NE(refusal_to_html(refusal).find("<code>stanchion check &#39;a b.mtx&#39;</code>"),
+            std::string::npos);
+}
+
+TEST(Refusal, SaysWhatKindOfEndItWas) {
+  for (const auto& [why, words] :
+       {std::pair{Status::bad_usage("c", "m", "p", "r"), "The question was refused as typed."},
+        std::pair{Status::bad_input("c", "m", "p", "r"), "The input was refused."},
+        std::pair{Status::resource_limit("c", "m", "p", "r"),
+                  "A limit was reached before there was an answer."},
+        std::pair{Status::interrupted(), "The run was stopped before there was an answer."},
+        std::pair{Status::internal("m"), "The program failed."}}) {
+    const std::string page = refusal_to_html(refused(why));
+    EXPECT_NE(page.find(words), std::string::npos) << words;
+    EXPECT_NE(page.find("Nothing was counted, and nothing is certified."), std::string::npos);
+  }
 }
 
 TEST(Markup, BadBytesAreReplaced) {

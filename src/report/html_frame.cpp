@@ -1,0 +1,99 @@
+#include "report/html_frame.hpp"
+
+#include <fmt/format.h>
+
+#include "model/version.hpp"
+#include "report/html_style.hpp"
+#include "report/markup.hpp"
+
+namespace stanchion {
+namespace {
+
+struct MarkDrawing {
+  const char *colour, *name, *beam, *posts;
+};
+
+MarkDrawing drawing_of(Mark mark) {
+  constexpr const char* kOpenBeam = "M6 20h22M36 20h4M46 20h4M56 20h4";
+  constexpr const char* kOpenPosts = "M16 22v34M50 30v4M50 42v4M50 52v4";
+  switch (mark) {
+    case Mark::kGood:
+      return {"clear", "good", "M6 20h54", "M16 22v34M50 22v34"};
+    case Mark::kNotGood:
+      return {"heed", "not good", "M6 32L60 10", "M16 34v22M50 24v32"};
+    case Mark::kUnresolved:
+      return {"open", "unresolved", kOpenBeam, kOpenPosts};
+    case Mark::kNoAnswer:
+      break;
+  }
+  return {"heed", "no answer", kOpenBeam, kOpenPosts};
+}
+
+}  // namespace
+
+std::string html_page(const std::string& title, const std::optional<std::string>& reference,
+                      const std::string& command, const std::string& body) {
+  std::string html =
+      "<!DOCTYPE html>\n<html lang=\"en\"><head><meta charset=\"utf-8\">\n"
+      "<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n";
+  html +=
+      fmt::format("<title>{}</title>\n<style>{}</style></head>\n<body><main>\n", escaped(title), kHtmlStyle);
+  html += fmt::format("<header class=\"top\"><h1>{}</h1><p>{}{} {}, {}</p></header>\n", escaped(title),
+                      reference ? "Reference: " + escaped(*reference) + " · " : "", program_name(),
+                      program_version(), escaped(command));
+  return html + body +
+         fmt::format(
+             "<footer>Made by {} {}. This page stands alone: it loads nothing and runs "
+             "nothing.</footer>\n</main></body></html>\n",
+             program_name(), program_version());
+}
+
+std::string verdict_mark(Mark mark) {
+  const MarkDrawing drawing = drawing_of(mark);
+  return fmt::format(
+      "<svg class=\"{}\" viewBox=\"0 0 66 66\" role=\"img\" aria-label=\"{}\"><path d=\"{}\" "
+      "stroke=\"currentColor\" "
+      "stroke-width=\"6\" stroke-linecap=\"round\" fill=\"none\"/><path d=\"{}M4 60h58\" "
+      "stroke=\"currentColor\" "
+      "stroke-width=\"3\" stroke-linecap=\"round\" fill=\"none\"/></svg>",
+      drawing.colour, drawing.name, drawing.beam, drawing.posts);
+}
+
+std::string question_in_words(const QuestionAsked& asked) {
+  const std::string& c = asked.command;
+  if (c == "check")
+    return asked.located ? "Is K positive definite? If not: where, and why?" : "Is K positive definite?";
+  if (c == "locate") return "Which nodes carry the zero, negative and weak directions of K, and why?";
+  if (c == "forecast") return "What will a factorization of K take?";
+  const std::string subject = asked.geometric ? "critical factors of the pencil of K and G"
+                              : asked.mass    ? "eigenvalues of K - s M"
+                                              : "eigenvalues of K";
+  if (c == "count") return "How many " + subject + " lie below the values asked?";
+  if (c == "sweep") return "How does the number of " + subject + " grow over the range?";
+  if (c == "bracket") return "Between which bounds do the " + subject + " lie?";
+  if (c == "audit") return "Is the list of " + subject + " complete in its range?";
+  return "What was asked: " + c;
+}
+
+std::string command_to_html(const std::vector<std::string>& arguments) {
+  std::string command = escaped(program_name());
+  for (const std::string& argument : arguments) {
+    const bool plain = argument.find_first_of(" \t\"'$*?;&|<>()") == std::string::npos && !argument.empty();
+    const std::string word = escaped(plain ? argument : "'" + argument + "'");
+    command += " " + (argument.rfind('-', 0) == 0 ? "<span class=\"num\">" + word + "</span>" : word);
+  }
+  return fmt::format("<code>{}</code>", command);
+}
+
+std::string path_to_html(const std::string& path) {
+  std::string html;
+  for (std::size_t from = 0; from < path.size();) {
+    const std::size_t slash = path.find('/', from);
+    const std::size_t to = slash == std::string::npos ? path.size() : slash + 1;
+    html += escaped(path.substr(from, to - from)) + (to < path.size() ? "<wbr>" : "");
+    from = to;
+  }
+  return html;
+}
+
+}  // namespace stanchion
