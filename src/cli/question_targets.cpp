@@ -102,7 +102,8 @@ void open_for_refusal(const OutputOptions& output, const std::vector<std::string
 void deliver_refusal(Targets& targets, const Refusal& refusal) {
   Status ignored;
   if (targets.html && !targets.html->committed()) ignored = targets.html->commit(refusal_to_html(refusal));
-  if (targets.junit && !targets.junit->committed()) ignored = targets.junit->commit(refusal_to_junit(refusal));
+  if (targets.junit && !targets.junit->committed())
+    ignored = targets.junit->commit(refusal_to_junit(refusal));
 }
 
 }  // namespace stanchion::cli

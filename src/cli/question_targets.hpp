@@ -28,9 +28,9 @@ struct Targets {
   bool answered = false;                     ///< there is an answer, which is being written
 };
 
-/// Opens every file that `output` names and removes what stood there before: a run that is refused, or killed,
-/// leaves no answer of another one. Before that nothing is touched: bad usage "contradiction" when a file is
-/// read as well or named twice, "cannot-write" where nothing can be written.
+/// Opens every file that `output` names and removes what stood there before: a run that is refused, or
+/// killed, leaves no answer of another one. Before that nothing is touched: bad usage "contradiction" when a
+/// file is read as well or named twice, "cannot-write" where nothing can be written.
 Status open_targets(const OutputOptions& output, const Request& request, Targets& targets);
 
 /// The same for a question that was refused before its files were known for certain: what can be opened is,
@@ -38,8 +38,8 @@ Status open_targets(const OutputOptions& output, const Request& request, Targets
 void open_for_refusal(const OutputOptions& output, const std::vector<std::string>& words,
                       const std::vector<std::string>& read, Targets& targets);
 
-/// Writes page and JUnit XML, those that are open and not written yet. Failures are passed over: another one is
-/// being reported.
+/// Writes page and JUnit XML, those that are open and not written yet. Failures are passed over: another one
+/// is being reported.
 void deliver_refusal(Targets& targets, const Refusal& refusal);
 
 }  // namespace stanchion::cli

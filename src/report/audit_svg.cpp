@@ -29,20 +29,21 @@ std::string words_of(const AuditGap& gap) {
 
 class AuditChart {
  public:
-  AuditChart(const Outcome& outcome, double low, double high)
-      : audit_(*outcome.audit), chart_(kHeight, "The list beside what is counted", low, high) {}
+  AuditChart(const Outcome& outcome, ChartWidth width, double low, double high)
+      : audit_(*outcome.audit), chart_(width, kHeight, "The list beside what is counted", low, high) {}
 
   std::string draw(const std::string& axis) {
     chart_.text(Chart::kLeft - 16, kListed + 4, "end", "listed");
     chart_.text(Chart::kLeft - 16, kCounted + 4, "end", "counted");
-    chart_.line(Chart::kLeft, kListed, Chart::kWidth - Chart::kRight, kListed, "s-rule");
+    chart_.line(Chart::kLeft, kListed, chart_.width() - Chart::kRight, kListed, "s-rule");
     stretches();
     listed();
     for (const CriticalValue& value : audit_.missing)
       chart_.mark(chart_.x(shown(value.value)), kCounted, kDiamond, "c-found",
                   fmt::format("missing: {} to {}", exact(shown(value.low)), exact(shown(value.high))));
-    labels();
+    const Offset untold = labels();
     chart_.axis(kAxis, axis, false);
+    if (untold > 0) count_untold(untold);
     return chart_.done();
   }
 
@@ -112,25 +113,27 @@ class AuditChart {
     return together;
   }
 
-  void labels() {
+  /// Returns how many stretches have no name, for want of room.
+  Offset labels() {
     const double foot = kListed - 12;
     const std::vector<AuditGap> gaps = named();
     if (gaps.empty() && audit_.verdict == AuditVerdict::kComplete)
-      chart_.text((Chart::kLeft + Chart::kWidth - Chart::kRight) / 2, foot - 8, "middle",
+      chart_.text((Chart::kLeft + chart_.width() - Chart::kRight) / 2, foot - 8, "middle",
                   fmt::format("complete: {} listed, {} counted", grouped(audit_.listed),
                               grouped(audit_.range.count.value_or(0))),
                   "c-strong");
-    LabelLayout layout({Chart::kLeft - 60, 4, Chart::kWidth - 4, foot});
+    LabelLayout layout({Chart::kLeft - 60, 4, chart_.width() - 4, foot});
     Offset untold = 0;
     for (const AuditGap& gap : gaps) {
       const double middle = (x_low(gap) + x_high(gap)) / 2;
       if (!chart_.name(layout, middle, foot, 66, words_of(gap), kCounted - kHalf)) ++untold;
     }
-    if (untold > 0)
-      chart_.text(
-          Chart::kWidth - Chart::kRight, kHeight - 4, "end",
-          fmt::format("and {} more, for whose words there is no room: see the table", grouped(untold)),
-          "c-small");
+    return untold;
+  }
+
+  void count_untold(Offset untold) {
+    chart_.below(
+        fmt::format("and {} more, for whose words there is no room: see the table", grouped(untold)));
   }
 
   const AuditOutcome& audit_;
@@ -139,7 +142,7 @@ class AuditChart {
 
 }  // namespace
 
-std::string audit_svg(const Outcome& outcome) {
+std::string audit_svg(const Outcome& outcome, ChartWidth width) {
   if (!outcome.audit) return "";
   const AuditOutcome& audit = *outcome.audit;
   const auto shown = [&audit](double value) { return audit.in_hertz ? hertz_of(value) : value; };
@@ -153,7 +156,7 @@ std::string audit_svg(const Outcome& outcome) {
   const bool geometric = std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
                                      [](const InputRecord& input) { return input.role == "geometric"; });
   const std::string axis = audit.in_hertz ? "frequency, Hz" : geometric ? "load factor f" : "eigenvalue s";
-  return AuditChart(outcome, low, high)
+  return AuditChart(outcome, width, low, high)
       .draw(axis + "; bar: as many counted as listed; hatched: more counted; meshed: fewer, or others");
 }
 

@@ -8,16 +8,21 @@
 
 namespace stanchion {
 
+/// How wide a chart is drawn: a page holds it twice, and shows the one that suits its window.
+enum class ChartWidth { kWide, kNarrow };
+
 /// 1, 2 or 5 times a power of ten, so that about `many` of them span `range`.
 double tick_step(double range, int many);
 
 /// An SVG element in the making, of the page's classes; x runs from `low` to `high` between its margins.
 class Chart {
  public:
-  static constexpr double kWidth = 760, kLeft = 84, kRight = 24;
+  static constexpr double kLeft = 84, kRight = 24;
   static constexpr const char* kDisc = "M-4.5 0a4.5 4.5 0 1 0 9 0a4.5 4.5 0 1 0-9 0Z";
 
-  Chart(double height, const std::string& title, double low, double high);
+  Chart(ChartWidth width, double height, const std::string& title, double low, double high);
+
+  double width() const { return width_; }
 
   double x(double value) const;
   void line(double x1, double y1, double x2, double y2, const char* kind);
@@ -31,13 +36,19 @@ class Chart {
   /// nothing drawn, where there is no room.
   bool name(LabelLayout& layout, double at_x, double foot, double reach, const std::string& words,
             double end);
-  /// Ticks at round numbers below y, and the name of the axis below them; whole numbers only if `whole`.
+  /// Ticks at round numbers below y, and the name of the axis below them, in as many lines as it takes; whole
+  /// numbers only if `whole`.
   void axis(double y, const std::string& name, bool whole);
+  /// A line of small words below everything else.
+  void below(const std::string& words);
   std::string done();
 
  private:
-  double low_, high_;
-  std::string svg_;
+  std::string pattern(const char* name) const;
+
+  ChartWidth kind_;
+  double width_, bottom_, low_, high_;
+  std::string title_, svg_;
 };
 
 }  // namespace stanchion

@@ -89,29 +89,32 @@ std::string question_to_html(const Outcome& outcome) {
 }
 
 /// The answer as a chart, where it has one.
-std::string chart_of(const Outcome& outcome) {
-  if (outcome.audit) return audit_svg(outcome);
-  if (outcome.path) return path_svg(outcome);
-  if (outcome.sweep) return staircase_svg(outcome, false);
+std::string chart_of(const Outcome& outcome, ChartWidth size) {
+  if (outcome.audit) return audit_svg(outcome, size);
+  if (outcome.path) return path_svg(outcome, size);
+  if (outcome.sweep) return staircase_svg(outcome, false, size);
   if (!outcome.count || outcome.count->counts.size() < 2) return "";
   std::vector<std::pair<double, Index>> steps;
   for (const ShiftCount& count : outcome.count->counts)
     steps.emplace_back(count.shift, count.below.value_or(count.below_range.first));
   std::sort(steps.begin(), steps.end());
-  constexpr double kWidth = 640, kHeight = 200, kLeft = 46, kBase = 164, kTop = 22;
+  constexpr double kHeight = 200, kLeft = 46, kBase = 164, kTop = 22;
+  const double width = size == ChartWidth::kWide ? 640 : 360;
   const double low = std::min(0.0, steps.front().first), high = std::max(0.0, steps.back().first);
   Index most = 1;
   for (const auto& step : steps) most = std::max(most, step.second);
   const auto x = [&](double s) {
-    return kLeft + (kWidth - 2 * kLeft) * (high > low ? (s - low) / (high - low) : 0.5);
+    return kLeft + (width - 2 * kLeft) * (high > low ? (s - low) / (high - low) : 0.5);
   };
   const auto y = [&](Index n) { return kBase - (kBase - kTop) * n / most; };
   std::string svg = fmt::format(
       "<svg class=\"chart\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Counts over shifts\">\n",
-      kWidth, kHeight);
-  svg += fmt::format("<path class=\"c-axis\" d=\"M{:.0f} {:.0f}H{:.0f}\"/>\n", kLeft, kBase, kWidth - kLeft);
+      width, kHeight);
+  svg += fmt::format("<path class=\"c-axis\" d=\"M{:.0f} {:.0f}H{:.0f}\"/>\n", kLeft, kBase, width - kLeft);
   double label_x = -100;
-  for (const auto& [shift, count] : steps) {
+  for (std::size_t k = 0; k < steps.size(); ++k) {
+    const auto& [shift, count] = steps[k];
+    const bool crowded = k + 1 < steps.size() && x(steps[k + 1].first) - x(shift) < 12;  // by the next stem
     svg += fmt::format(
         "<path class=\"c-step\" d=\"M{0:.1f} {1:.1f}V{2:.1f}\"/><circle class=\"c-bar\" cx=\"{0:.1f}\" "
         "cy=\"{2:.1f}\" r=\"4\"/>\n",
@@ -119,21 +122,22 @@ std::string chart_of(const Outcome& outcome) {
     if (x(shift) - label_x < 34) continue;
     label_x = x(shift);
     svg += fmt::format(
-        "<text class=\"c-small\" x=\"{0:.1f}\" y=\"{1:.1f}\" text-anchor=\"middle\">{2}</text><text "
+        "<text class=\"c-small\" x=\"{0:.1f}\" y=\"{1:.1f}\" text-anchor=\"{5}\">{2}</text><text "
         "class=\"c-small\" x=\"{0:.1f}\" "
         "y=\"{3:.0f}\" text-anchor=\"middle\">{4:.4g}</text>\n",
-        x(shift), y(count) - 8, count, kBase + 16, shift);
+        x(shift), y(count) - 8, count, kBase + 16, shift, crowded ? "end" : "middle");
   }
   return svg + fmt::format(
                    "<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">shift; above it "
                    "the count</text></svg>\n",
-                   kWidth / 2, kHeight - 4);
+                   width / 2, kHeight - 4);
 }
 
 std::string inputs_to_html(const Outcome& outcome) {
-  std::string html =
-      "<table class=\"inputs\"><tr><th>input</th><th>file</th><th class=\"right\">equations</th><th "
-      "class=\"right\">entries</th><th>SHA-256</th></tr>\n";
+  std::string html = begin_table("Inputs", "inputs") +
+                     "<tr><th scope=\"col\">input</th><th scope=\"col\">file</th><th scope=\"col\" "
+                     "class=\"right\">equations</th><th "
+                     "class=\"right\">entries</th><th scope=\"col\">SHA-256</th></tr>\n";
   for (const InputRecord& input : outcome.inputs) {
     html += fmt::format(
         "<tr><td>{}{}</td><td>{}</td><td class=\"right\">{}</td><td class=\"right\">{}</td><td "
@@ -151,10 +155,10 @@ std::string inputs_to_html(const Outcome& outcome) {
     file("step " + std::to_string(k + 1), step.path, step.sha256);
   }
   for (const TableRecord& table : outcome.tables) file(table.role, table.path, table.sha256);
-  html += "</table>\n";
+  html += end_table();
   Page page;
   write_provenance(page, outcome);
-  return html + blocks_to_html(page.blocks(), outcome.inputs.size(), page.blocks().size());
+  return html + blocks_to_html("Work", page.blocks(), outcome.inputs.size(), page.blocks().size());
 }
 
 }  // namespace
@@ -170,9 +174,9 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
 
   std::string html;
   html += "<div class=\"verdict\">" +
-          verdict_mark(unresolved ? Mark::kUnresolved
-                       : good     ? Mark::kGood
-                                  : Mark::kNotGood) +
+          verdict_mark(unresolved ? VerdictMark::kUnresolved
+                       : good     ? VerdictMark::kGood
+                                  : VerdictMark::kNotGood) +
           "<div>\n";
   for (std::size_t k = 0; k < lead; ++k) {
     html += fmt::format("<p{}>{}</p>\n", k == 0 ? " class=\"lead\"" : "", flowing(blocks[k].text));
@@ -183,12 +187,11 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   if (outcome.located) html += band("Where and why", causes_to_html(*outcome.located));
   // What follows up to the first title belongs to the answer; titles open sections of their own.
   std::string heading = "Answer";
-  std::string chart = chart_of(outcome);
-  if (!chart.empty()) chart = "<div class=\"wide\">" + chart + "</div>\n";
+  std::string chart = in_both_widths([&](ChartWidth width) { return chart_of(outcome, width); });
   for (std::size_t k = lead; k < blocks.size();) {
     std::size_t end = k;
     while (end < blocks.size() && blocks[end].kind != Page::Kind::kTitle) ++end;
-    html += band(heading, chart + blocks_to_html(blocks, k, end));
+    html += band(heading, chart + blocks_to_html(heading, blocks, k, end));
     chart.clear();
     if (end < blocks.size()) heading = blocks[end].text;
     k = end + 1;
@@ -200,7 +203,7 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
   }
   Page warnings;
   write_warnings(warnings, outcome.warnings);
-  html += band("Warnings", blocks_to_html(warnings.blocks(), 0, warnings.blocks().size()));
+  html += band("Warnings", blocks_to_html("Warnings", warnings.blocks(), 0, warnings.blocks().size()));
   html += band("Inputs, work, time", inputs_to_html(outcome));
   std::string open;
   for (const std::string& sentence : outcome.not_checked) open += "<li>" + flowing(sentence) + "</li>\n";

@@ -13,17 +13,17 @@ struct MarkDrawing {
   const char *colour, *name, *beam, *posts;
 };
 
-MarkDrawing drawing_of(Mark mark) {
+MarkDrawing drawing_of(VerdictMark mark) {
   constexpr const char* kOpenBeam = "M6 20h22M36 20h4M46 20h4M56 20h4";
   constexpr const char* kOpenPosts = "M16 22v34M50 30v4M50 42v4M50 52v4";
   switch (mark) {
-    case Mark::kGood:
+    case VerdictMark::kGood:
       return {"clear", "good", "M6 20h54", "M16 22v34M50 22v34"};
-    case Mark::kNotGood:
+    case VerdictMark::kNotGood:
       return {"heed", "not good", "M6 32L60 10", "M16 34v22M50 24v32"};
-    case Mark::kUnresolved:
+    case VerdictMark::kUnresolved:
       return {"open", "unresolved", kOpenBeam, kOpenPosts};
-    case Mark::kNoAnswer:
+    case VerdictMark::kNoAnswer:
       break;
   }
   return {"heed", "no answer", kOpenBeam, kOpenPosts};
@@ -48,7 +48,7 @@ std::string html_page(const std::string& title, const std::optional<std::string>
              program_name(), program_version());
 }
 
-std::string verdict_mark(Mark mark) {
+std::string verdict_mark(VerdictMark mark) {
   const MarkDrawing drawing = drawing_of(mark);
   return fmt::format(
       "<svg class=\"{}\" viewBox=\"0 0 66 66\" role=\"img\" aria-label=\"{}\"><path d=\"{}\" "
@@ -83,6 +83,17 @@ std::string command_to_html(const std::vector<std::string>& arguments) {
     command += " " + (argument.rfind('-', 0) == 0 ? "<span class=\"num\">" + word + "</span>" : word);
   }
   return fmt::format("<code>{}</code>", command);
+}
+
+std::string begin_table(const std::string& name, const std::string& kind) {
+  return fmt::format(
+      "<div class=\"scroll\" role=\"group\" aria-label=\"{0}\" tabindex=\"0\"><table{1} "
+      "aria-label=\"{0}\">\n",
+      escaped(name), kind.empty() ? "" : fmt::format(" class=\"{}\"", kind));
+}
+
+std::string end_table() {
+  return "</table></div>\n";
 }
 
 std::string path_to_html(const std::string& path) {

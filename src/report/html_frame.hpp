@@ -5,16 +5,28 @@
 #include <string>
 #include <vector>
 
+#include "report/chart.hpp"
+
 namespace stanchion {
 
 /// A whole page that stands alone: it loads nothing and runs nothing. `body` lies between title and footer.
 std::string html_page(const std::string& title, const std::optional<std::string>& reference,
                       const std::string& command, const std::string& body);
 
-enum class Mark { kGood, kNotGood, kUnresolved, kNoAnswer };
+/// A chart drawn for a wide window and for paper, and one for a narrow window; nothing where it draws
+/// nothing.
+template <class Draw>
+std::string in_both_widths(const Draw& draw) {
+  const std::string wide = draw(ChartWidth::kWide);
+  if (wide.empty()) return "";
+  return "<div class=\"wide\">" + wide + "</div><div class=\"narrow\">" + draw(ChartWidth::kNarrow) +
+         "</div>\n";
+}
+
+enum class VerdictMark { kGood, kNotGood, kUnresolved, kNoAnswer };
 
 /// A beam on two posts: level, come off, or not drawn to its end.
-std::string verdict_mark(Mark mark);
+std::string verdict_mark(VerdictMark mark);
 
 struct QuestionAsked {
   std::string command;
@@ -26,6 +38,11 @@ std::string question_in_words(const QuestionAsked& asked);
 
 /// The command line, quoted for a shell where need be.
 std::string command_to_html(const std::vector<std::string>& arguments);
+
+/// Opens a table called `name` of the page's class `kind` (may be empty), in a box that scrolls, by keys too,
+/// where the window is too narrow for it.
+std::string begin_table(const std::string& name, const std::string& kind);
+std::string end_table();
 
 /// A path that may go on in the next line after each folder.
 std::string path_to_html(const std::string& path);

@@ -7,6 +7,8 @@
 #include <optional>
 
 #include "report/cause_words.hpp"
+#include "report/html_frame.hpp"
+#include "report/label_layout.hpp"
 #include "report/markup.hpp"
 #include "report/model_view.hpp"
 #include "report/numbers.hpp"
@@ -24,25 +26,27 @@ std::string tag(const char* name, const std::string& text) {
 /// A table of more columns than this is set closer, so that it fits beside the heading of its section.
 constexpr std::size_t kEasyColumns = 7;
 
-std::string table_of(const Page::Block& block) {
+std::string table_of(const Page::Block& block, const std::string& name) {
   const bool many = !block.cells.empty() && block.cells[0].size() > kEasyColumns;
-  std::string html = many ? "<table class=\"close\">\n" : "<table>\n";
+  std::string html = begin_table(name, many ? "close" : "");
   for (std::size_t r = 0; r < block.cells.size(); ++r) {
     html += "<tr>";
     for (std::size_t c = 0; c < block.cells[r].size(); ++c) {
-      html += fmt::format("<{0}{1}>{2}</{0}>", r == 0 ? "th" : "td",
+      html += fmt::format("<{0}{1}{2}>{3}</{0}>", r == 0 ? "th" : "td", r == 0 ? " scope=\"col\"" : "",
                           c < block.to_the_right ? " class=\"right\"" : "", escaped(block.cells[r][c]));
     }
     html += "</tr>\n";
   }
-  return html + "</table>\n";
+  return html + end_table();
 }
 
 std::string ranked_table(const Direction& direction) {
   if (direction.nodes.empty()) return "";
   double most = 0;
   for (const DofShare& d : direction.nodes) most = std::max(most, d.share);
-  std::string html = "<table><tr><th>node</th><th>dof</th><th>share</th><th></th></tr>\n";
+  std::string html = begin_table("Nodes and dofs by their share", "") +
+                     "<tr><th scope=\"col\">node</th><th scope=\"col\">dof</th><th scope=\"col\" "
+                     "colspan=\"2\">share</th></tr>\n";
   for (std::size_t k = 0; k < std::min(kNodesShown, direction.nodes.size()); ++k) {
     const DofShare& d = direction.nodes[k];
     html += fmt::format(
@@ -51,12 +55,10 @@ std::string ranked_table(const Direction& direction) {
         d.node ? std::to_string(*d.node) : "-", escaped(d.dof), most > 0 ? 100 * d.share / most : 0,
         escaped(percent(d.share)));
   }
-  html += "</table>";
+  html += end_table();
   const Offset rest =
       Offset{direction.moving_rows} - static_cast<Offset>(std::min(kNodesShown, direction.nodes.size()));
-  if (rest > 0)
-    html += fmt::format("<p>and {} more equations at {}</p>", grouped(rest),
-                        counted(direction.moving_nodes, "node"));
+  if (rest > 0) html += fmt::format("<p>and {}</p>", counted(rest, "more equation"));
   return html;
 }
 
@@ -143,7 +145,10 @@ std::string cause_to_html(const LocateOutcome& located, const Direction& directi
     fact("part",
          fmt::format("{} of {}", *direction.component + 1,
                      located.components.size() + static_cast<std::size_t>(located.components_left_out)));
-  if (direction.moving_nodes > 0) fact("takes part", counted(direction.moving_nodes, "node"));
+  // More equations than these nodes have: the nodes are those that hold half of a motion of the whole.
+  const bool half = direction.moving_rows > 8 * direction.moving_nodes;
+  if (direction.moving_nodes > 0)
+    fact(half ? "half of it at" : "takes part", counted(direction.moving_nodes, "node"));
   if (direction.cause != Cause::kOverStiffCoupling) {
     fact("held to K",
          fmt::format(
@@ -165,17 +170,50 @@ std::string short_count(Index count) {
   return fmt::format("{:.0f}M", count / 1e6);
 }
 
+struct BarTop {
+  double middle, top;
+  std::string words;
+};
+
+/// Each count over its bar; where it would touch what is there already a little aside or a line higher, else
+/// not at all: the bar's title has it.
+std::string counts_over(const std::vector<BarTop>& bars, double bar_width) {
+  constexpr double kSize = 11, kAir = 0.8;
+  constexpr std::pair<double, double> kTries[] = {{0, -4}, {3, -4}, {-3, -4}, {0, -15}, {3, -15}, {-3, -15}};
+  std::vector<Box> taken;
+  for (const BarTop& bar : bars)
+    taken.push_back({bar.middle - bar_width / 2 + 1, bar.top, bar.middle + bar_width / 2 - 1, 1e9});
+  std::string svg;
+  for (const BarTop& bar : bars) {
+    const double half = text_width(bar.words, kSize, false) / 2 + kAir;
+    for (const auto& [aside, up] : kTries) {
+      const double middle = bar.middle + aside, foot = bar.top + up;
+      const Box box{middle - half, foot - 8, middle + half, foot};
+      if (std::any_of(taken.begin(), taken.end(), [&](const Box& other) { return box.meets(other); }))
+        continue;
+      taken.push_back(box);
+      svg +=
+          fmt::format("<text class=\"c-small\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"middle\">{}</text>\n",
+                      middle, foot, bar.words);
+      break;
+    }
+  }
+  return svg;
+}
+
 /// Bars by half digits, with the two levels.
-std::string histogram(const LocalAccuracy& accuracy) {
-  constexpr double kWidth = 640, kHeight = 210, kLeft = 20, kBase = 172, kTop = 26;
+std::string histogram(const LocalAccuracy& accuracy, ChartWidth size) {
+  const double width = size == ChartWidth::kWide ? 640 : 360;
+  constexpr double kHeight = 210, kLeft = 20, kBase = 172, kTop = 26;
   const double digits = std::max({accuracy.alarm + 1.0, accuracy.largest + 0.5, 4.0});
-  const double unit = (kWidth - 2 * kLeft) / digits;
+  const double unit = (width - 2 * kLeft) / digits;
   Index most = 1;
   for (const auto& [from, count] : accuracy.histogram) most = std::max(most, count);
   std::string svg = fmt::format(
       "<svg class=\"chart\" viewBox=\"0 0 {:.0f} {:.0f}\" role=\"img\" aria-label=\"Equations by digits "
       "lost\">\n",
-      kWidth, kHeight);
+      width, size == ChartWidth::kWide ? kHeight : kHeight + 15);
+  std::vector<BarTop> tops;
   for (const auto& [from, count] : accuracy.histogram) {
     if (count == 0) continue;
     const double height = std::max(2.0, (kBase - kTop) * count / most);
@@ -185,10 +223,10 @@ std::string histogram(const LocalAccuracy& accuracy) {
         "{} digits: {}</title></rect>\n",
         kind, kLeft + unit * from + 1, kBase - height, std::max(1.0, unit / 2 - 2), height, from, from + 0.5,
         counted(count, "equation"));
-    svg += fmt::format("<text class=\"c-small\" x=\"{:.1f}\" y=\"{:.1f}\" text-anchor=\"middle\">{}</text>\n",
-                       kLeft + unit * (from + 0.25), kBase - height - 4, short_count(count));
+    tops.push_back({kLeft + unit * (from + 0.25), kBase - height, short_count(count)});
   }
-  svg += fmt::format("<path class=\"c-axis\" d=\"M{:.0f} {:.0f}H{:.0f}\"/>\n", kLeft, kBase, kWidth - kLeft);
+  svg += counts_over(tops, unit / 2);
+  svg += fmt::format("<path class=\"c-axis\" d=\"M{:.0f} {:.0f}H{:.0f}\"/>\n", kLeft, kBase, width - kLeft);
   for (int d = 0; d <= static_cast<int>(digits); d += 2) {
     svg += fmt::format("<text class=\"c-small\" x=\"{:.1f}\" y=\"{:.0f}\" text-anchor=\"middle\">{}</text>\n",
                        kLeft + unit * d, kBase + 15, d);
@@ -201,10 +239,14 @@ std::string histogram(const LocalAccuracy& accuracy) {
   };
   level(accuracy.attention, "attention");
   level(accuracy.alarm, "alarm");
-  svg += fmt::format(
-      "<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">decimal digits lost, of "
-      "16; above each bar its equations (k: thousand, M: million)</text>\n",
-      kWidth / 2, kBase + 32);
+  double line = kBase + 32;
+  for (const std::string& words :
+       wrapped("decimal digits lost, of 16; above each bar its equations (k: thousand, M: million)",
+               width - 12, 11)) {
+    svg += fmt::format("<text class=\"c-small\" x=\"{:.0f}\" y=\"{:.0f}\" text-anchor=\"middle\">{}</text>\n",
+                       width / 2, line, words);
+    line += 15;
+  }
   return svg + "</svg>\n";
 }
 
@@ -227,7 +269,8 @@ std::string band(const std::string& heading, const std::string& body) {
                      body);
 }
 
-std::string blocks_to_html(const std::vector<Page::Block>& blocks, std::size_t begin, std::size_t end) {
+std::string blocks_to_html(const std::string& name, const std::vector<Page::Block>& blocks, std::size_t begin,
+                           std::size_t end) {
   std::string html;
   for (std::size_t k = begin; k < end;) {
     const Page::Kind kind = blocks[k].kind;
@@ -243,7 +286,7 @@ std::string blocks_to_html(const std::vector<Page::Block>& blocks, std::size_t b
       html += "</ul>\n";
     } else {
       for (; k < last; ++k) {
-        if (kind == Page::Kind::kTable) html += table_of(blocks[k]);
+        if (kind == Page::Kind::kTable) html += table_of(blocks[k], name);
         if (kind == Page::Kind::kSentence) html += tag("p", blocks[k].text) + "\n";
       }
     }
@@ -284,7 +327,7 @@ std::string parts_to_html(const LocateOutcome& located) {
     }
     table.cells.push_back(std::move(row));
   }
-  std::string html = table_of(table);
+  std::string html = table_of(table, "Connected parts");
   if (rigid)
     html +=
         "<p>x to turn z: energy of each rigid motion of the part over what its dofs have by themselves; "
@@ -322,16 +365,18 @@ std::string accuracy_to_html(const LocateOutcome& located) {
       exact(accuracy.alarm), escaped(accuracy.method), accuracy.vectors);
   if (!located.accuracy_note.empty()) html += tag("p", located.accuracy_note);
   if (!accuracy.held.empty()) html += tag("p", "Held at " + held_in_words(accuracy) + ".");
-  html += "<div class=\"wide\">" + histogram(accuracy) + "</div>";
+  html += in_both_widths([&](ChartWidth width) { return histogram(accuracy, width); });
   const std::string field =
       draw_field(located.picture, accuracy.by_node, std::max(accuracy.attention, accuracy.largest));
-  std::string worst = "<table><tr><th>node</th><th>dof</th><th class=\"right\">digits lost</th></tr>\n";
+  std::string worst = begin_table("Nodes at which most digits are lost", "") +
+                      "<tr><th scope=\"col\">node</th><th scope=\"col\">dof</th><th scope=\"col\" "
+                      "class=\"right\">digits lost</th></tr>\n";
   for (std::size_t k = 0; k < std::min(kNodesShown, accuracy.worst.size()); ++k) {
     const DofShare& d = accuracy.worst[k];
     worst += fmt::format("<tr><td>{}</td><td>{}</td><td class=\"right\">{:.1f}</td></tr>\n",
                          d.node ? std::to_string(*d.node) : "-", escaped(d.dof), d.share);
   }
-  worst += "</table>";
+  worst += end_table();
   if (field.empty()) return html + worst;
   return html +
          fmt::format(

@@ -11,8 +11,9 @@ namespace stanchion {
 /// A section with its heading in the margin; nothing for an empty body.
 std::string band(const std::string& heading, const std::string& body);
 
-/// Blocks [begin, end) of a page: rows as a definition list, tables, bullets and sentences.
-std::string blocks_to_html(const std::vector<Page::Block>& blocks, std::size_t begin, std::size_t end);
+/// Blocks [begin, end) of a page: rows as a definition list, tables (called `name`), bullets and sentences.
+std::string blocks_to_html(const std::string& name, const std::vector<Page::Block>& blocks, std::size_t begin,
+                           std::size_t end);
 
 /// One article a cause, with its drawings.
 std::string causes_to_html(const LocateOutcome& located);

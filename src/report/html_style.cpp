@@ -42,7 +42,7 @@ dt { color: var(--soft); } dd { margin: 0; }
 ul { margin: 0; padding-left: 1.1rem; } li { margin: 0 0 .3rem; }
 table { border-collapse: collapse; width: 100%; margin: .2rem 0; }
 td { overflow-wrap: break-word; } td.digest { overflow-wrap: anywhere; } th, td:first-child { overflow-wrap: normal; white-space: nowrap; }
-table + dl { margin-top: .6rem; }
+.scroll { overflow-x: auto; } .scroll + dl { margin-top: .6rem; } .narrow { display: none; }
 th { text-align: left; font-weight: 600; color: var(--soft); border-bottom: 1px solid var(--line); }
 td, th { padding: .22rem .9rem .22rem 0; vertical-align: top; } .right { text-align: right; white-space: nowrap; overflow-wrap: normal; }
 table.close { font-size: .84rem; } table.close td, table.close th { padding-right: .55rem; }
@@ -84,15 +84,15 @@ text.v-number { font-size: 13px; paint-order: stroke; stroke: var(--tint); strok
 .c-axis { stroke: var(--soft); fill: none; } .c-level { stroke: var(--ring); fill: none; stroke-dasharray: 4 3; } .c-step { stroke: var(--blue); fill: none; stroke-width: 2.2; }
 svg text.c-small { font-size: 11px; fill: var(--soft); }
 footer { border-top: 3px double var(--line); margin-top: .8rem; padding-top: .7rem; color: var(--soft); font-size: .87rem; }
-@media screen and (max-width: 60rem) { table.close { display: block; overflow-x: auto; } }
 @media screen and (max-width: 52rem) {
   main { padding: 1.2rem 1.1rem 2rem; }
   section.band { grid-template-columns: minmax(0, 1fr); } section.band > h2 { margin-bottom: .5rem; }
   .verdict { grid-template-columns: 2.8rem 1fr; gap: 0 .9rem; } .verdict svg { width: 2.8rem; height: 2.8rem; } .verdict .lead { font-size: 1.28rem; }
-  table { display: block; overflow-x: auto; } .wide { overflow-x: auto; } .wide > svg { min-width: 40rem; }
   td.digest { min-width: 17rem; }
-  .plates, .cause .columns { grid-template-columns: minmax(0, 1fr); } dl { grid-template-columns: 1fr; gap: 0; } dd { margin-bottom: .45rem; }
+  .cause .columns { grid-template-columns: minmax(0, 1fr); } dl { grid-template-columns: 1fr; gap: 0; } dd { margin-bottom: .45rem; }
 }
+@media screen and (max-width: 42rem) { .wide { display: none; } .narrow { display: block; } .narrow > svg { max-width: 30rem; }
+  .plates { grid-template-columns: minmax(0, 1fr); } .plates > svg.view + svg.view { max-width: 24rem; } }
 @media screen and (max-width: 30rem) {
   .plates > svg.view:first-child text.v-label { font-size: 20px; stroke-width: 6px; }
   .plates > svg.view:first-child .v-triad text, .plates > svg.view:first-child .v-bar text { font-size: 18px; }

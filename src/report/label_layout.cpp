@@ -77,6 +77,20 @@ double text_width(std::string_view text, double size, bool bold) {
   return width * size * (bold ? 1.125 : 1);
 }
 
+std::vector<std::string> wrapped(std::string_view text, double width, double size) {
+  std::vector<std::string> lines;
+  for (std::size_t from = 0; from < text.size();) {
+    const std::size_t end = std::min(text.find(' ', from), text.size());
+    const std::string word(text.substr(from, end - from));
+    if (!lines.empty() && text_width(lines.back() + " " + word, size, false) <= width)
+      lines.back() += " " + word;
+    else
+      lines.push_back(word);
+    from = end + 1;
+  }
+  return lines;
+}
+
 std::string shortened(std::string_view text, double width, double size, bool bold) {
   if (text_width(text, size, bold) <= width) return std::string(text);
   std::size_t end = text.size();

@@ -27,6 +27,9 @@ double text_width(std::string_view text, double size, bool bold);
 /// `text` if it is not wider than `width`, else its beginning with an ellipsis.
 std::string shortened(std::string_view text, double width, double size, bool bold);
 
+/// `text` in lines no wider than `width`, broken at blanks.
+std::vector<std::string> wrapped(std::string_view text, double width, double size);
+
 struct PlacedLabel {
   Box box;
   int side = 1;      ///< 1 to the right, -1 to the left of what it names, 0 above or below

@@ -288,7 +288,7 @@ class Drawer {
     return fmt::format(
         "<g class=\"v-bar\"><path d=\"M{:.1f} {:.0f}v6h{:.1f}v-6\"/><text x=\"{:.1f}\" y=\"{:.0f}\" "
         "text-anchor=\"end\">{:.4g} in the unit of the coordinates</text></g>\n",
-        width - 14 - pixels, kTall - 14, pixels, width - 14, kTall - 18, length);
+        width - 14 - pixels, kTall - 14, pixels, width - 14, kTall - 20, length);
   }
 
   /// The first mark's node with its nearest neighbours, their numbers, and the motion once more.

@@ -15,10 +15,10 @@ constexpr const char* kOpen = "M-5-9H5V9H-5Z";
 
 class PathChart {
  public:
-  explicit PathChart(const PathOutcome& path)
+  PathChart(const PathOutcome& path, ChartWidth width)
       : path_(path),
         base_(kTop + (none_open(path) ? 60 : 190)),
-        chart_(base_ + 62, "Directions that are not positive, by step", 1,
+        chart_(width, base_ + 62, "Directions that are not positive, by step", 1,
                static_cast<double>(path.steps.size())) {
     for (const PathStep& step : path.steps) {
       if (known(step)) most_ = std::max(most_, step.inertia.negative + step.inertia.zero);
@@ -52,7 +52,7 @@ class PathChart {
   void counts() {
     const auto step = static_cast<Index>(std::max(1.0, tick_step(std::max<double>(most_, 1), 5)));
     for (Index count = 0; count <= most_; count += step) {
-      chart_.line(Chart::kLeft, y(count), Chart::kWidth - Chart::kRight, y(count), "s-rule");
+      chart_.line(Chart::kLeft, y(count), chart_.width() - Chart::kRight, y(count), "s-rule");
       chart_.text(Chart::kLeft - 16, y(count) + 4, "end", grouped(count));
     }
     chart_.text(Chart::kLeft - 16, kTop - 18, "end", "directions");
@@ -90,13 +90,13 @@ class PathChart {
   }
 
   void firsts() {
-    LabelLayout layout({4, 4, Chart::kWidth - 4, kTop - 12});
+    LabelLayout layout({4, 4, chart_.width() - 4, kTop - 12});
     layout.keep_clear({0, kTop - 32, Chart::kLeft - 10, kTop - 12});  // the name of the other axis
     const auto at = [&](Index number, const std::string& words) {
       chart_.name(layout, x(static_cast<std::size_t>(number) - 1), kTop - 12, 60, words, base_);
     };
     if (!path_.first_not_definite)
-      chart_.text((Chart::kLeft + Chart::kWidth - Chart::kRight) / 2, kTop - 12, "middle",
+      chart_.text((Chart::kLeft + chart_.width() - Chart::kRight) / 2, kTop - 12, "middle",
                   fmt::format("all {} steps are positive definite", path_.steps.size()), "c-strong");
     if (path_.first_negative)
       at(*path_.first_negative, fmt::format("first negative direction: step {}", *path_.first_negative));
@@ -112,9 +112,9 @@ class PathChart {
 
 }  // namespace
 
-std::string path_svg(const Outcome& outcome) {
+std::string path_svg(const Outcome& outcome, ChartWidth width) {
   if (!outcome.path || outcome.path->steps.size() < 2) return "";
-  return PathChart(*outcome.path).draw();
+  return PathChart(*outcome.path, width).draw();
 }
 
 }  // namespace stanchion

@@ -45,14 +45,14 @@ std::string reason_to_html(const Refusal& refusal) {
   if (!refusal.why.remedy().empty()) page.row("remedy", refusal.why.remedy());
   page.row("code", refusal.why.code());
   page.row("exit code", std::to_string(refusal.exit_code));
-  return blocks_to_html(page.blocks(), 0, page.blocks().size());
+  return blocks_to_html("Why", page.blocks(), 0, page.blocks().size());
 }
 
 std::string question_to_html(const Refusal& refusal) {
   const auto& typed = refusal.arguments;
   const bool located = std::find(typed.begin(), typed.end(), "--locate") != typed.end();
-  const std::string question = question_in_words(
-      {refusal.command, located, names(refusal, "geometric"), names(refusal, "mass")});
+  const std::string question =
+      question_in_words({refusal.command, located, names(refusal, "geometric"), names(refusal, "mass")});
   return fmt::format("<dl>\n<dt>question</dt><dd>{}</dd>\n<dt>as typed</dt><dd>{}</dd>\n</dl>\n",
                      escaped(question), command_to_html(typed));
 }
@@ -60,29 +60,32 @@ std::string question_to_html(const Refusal& refusal) {
 std::string inputs_to_html(const Refusal& refusal) {
   if (refusal.inputs.empty()) return "";
   std::string html =
-      "<table class=\"inputs\"><tr><th>input</th><th>file</th></tr>\n";
+      begin_table("Inputs", "inputs") + "<tr><th scope=\"col\">input</th><th scope=\"col\">file</th></tr>\n";
   for (const TableRecord& input : refusal.inputs)
     html += fmt::format("<tr><td>{}</td><td>{}</td></tr>\n", escaped(input.role), path_to_html(input.path));
-  return html + "</table>\n<p>As named; without an answer no digest binds this page to what they hold.</p>\n";
+  return html + end_table() +
+         "<p>As named; without an answer no digest binds this page to what they hold.</p>\n";
 }
 
 std::string not_checked_to_html(const Refusal& refusal) {
   std::string html =
       "<ul>\n<li>Everything that was asked: no verdict, no count and no cause follows from this page.</li>\n";
   if (refusal.why.kind() == StatusKind::kBadInput)
-    html += "<li>Whether the files hold other faults: reading ends at the first that cannot be passed over.</li>\n";
+    html +=
+        "<li>Whether the files hold other faults: reading ends at the first that cannot be passed "
+        "over.</li>\n";
   return html + "</ul>\n";
 }
 
 }  // namespace
 
 std::string refusal_to_html(const Refusal& refusal) {
-  std::string html = "<div class=\"verdict\">" + verdict_mark(Mark::kNoAnswer) + "<div>\n";
+  std::string html = "<div class=\"verdict\">" + verdict_mark(VerdictMark::kNoAnswer) + "<div>\n";
   html += fmt::format("<p class=\"lead\">No answer: {}</p>\n", flowing(refusal.why.message()));
   html += fmt::format("<p>{}</p>\n", what_happened(refusal));
-  html += fmt::format("<p class=\"stand\">{}</p></div></div>\n",
-                      refusal.answered ? "This page certifies nothing."
-                                       : "Nothing was counted, and nothing is certified.");
+  html += fmt::format(
+      "<p class=\"stand\">{}</p></div></div>\n",
+      refusal.answered ? "This page certifies nothing." : "Nothing was counted, and nothing is certified.");
   html += band("Why", reason_to_html(refusal));
   html += band("Question", question_to_html(refusal));
   html += band("Inputs", inputs_to_html(refusal));

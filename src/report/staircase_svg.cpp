@@ -14,12 +14,12 @@
 namespace stanchion {
 namespace {
 
-constexpr double kWidth = 760, kHeight = 380, kLeft = 70, kRight = 24, kTop = 24, kBottom = 62;
+constexpr double kHeight = 380, kLeft = 70, kRight = 24, kTop = 28, kBottom = 62;
 
 class StaircasePicture {
  public:
-  StaircasePicture(const std::vector<StaircasePoint>& points, bool logarithmic)
-      : points_(points), logarithmic_(logarithmic) {
+  StaircasePicture(const std::vector<StaircasePoint>& points, bool logarithmic, ChartWidth width)
+      : points_(points), logarithmic_(logarithmic), narrow_(width == ChartWidth::kNarrow) {
     low_ = place(points.front().shift);
     high_ = place(points.back().shift);
     if (!(high_ > low_)) {
@@ -30,31 +30,37 @@ class StaircasePicture {
   }
 
   std::string draw(const std::string& meaning, const std::string& axis) {
-    svg_ = fmt::format(
-        "<svg xmlns=\"http://www.w3.org/2000/svg\" viewBox=\"0 0 {0:g} {1:g}\" width=\"{0:g}\" "
-        "height=\"{1:g}\" "
-        "role=\"img\" style=\"max-width:100%;height:auto;font:13px sans-serif\">\n<title>{2}</title>\n",
-        kWidth, kHeight, escaped("Staircase: " + meaning));
-    svg_ += fmt::format("<rect class=\"s-ground\" width=\"{:g}\" height=\"{:g}\" fill=\"#ffffff\"/>\n",
-                        kWidth, kHeight);
-    svg_ +=
-        "<defs><pattern id=\"open\" width=\"6\" height=\"6\" patternUnits=\"userSpaceOnUse\" "
-        "patternTransform=\"rotate(45)\"><line x1=\"0\" y1=\"0\" x2=\"0\" y2=\"6\" class=\"s-jump\" "
-        "stroke=\"#8a5a00\" "
-        "stroke-width=\"2\"/></pattern></defs>\n";
     count_axis();
     shift_axis(axis);
     steps();
-    return svg_ + "</svg>\n";
+    return head(meaning) + svg_ + "</svg>\n";
   }
 
  private:
+  std::string head(const std::string& meaning) const {
+    std::string svg = fmt::format(
+        "<svg xmlns=\"http://www.w3.org/2000/svg\" viewBox=\"0 0 {0:g} {1:g}\" width=\"{0:g}\" "
+        "height=\"{1:g}\" "
+        "role=\"img\" aria-label=\"{2}\" style=\"max-width:100%;height:auto;font:13px "
+        "sans-serif\">\n<title>{2}</title>\n",
+        width_, height_, escaped("Staircase: " + meaning));
+    svg += fmt::format("<rect class=\"s-ground\" width=\"{:g}\" height=\"{:g}\" fill=\"#ffffff\"/>\n", width_,
+                       height_);
+    svg += fmt::format(
+        "<defs><pattern id=\"{}\" width=\"6\" height=\"6\" patternUnits=\"userSpaceOnUse\" "
+        "patternTransform=\"rotate(45)\"><line x1=\"0\" y1=\"0\" x2=\"0\" y2=\"6\" class=\"s-jump\" "
+        "stroke=\"#8a5a00\" "
+        "stroke-width=\"2\"/></pattern></defs>\n",
+        pattern());
+    return svg;
+  }
+  const char* pattern() const { return narrow_ ? "open-narrow" : "open"; }
   double place(double shift) const {
     return logarithmic_ ? std::copysign(std::log10(std::fabs(shift)), shift < 0 ? -1 : 1) : shift;
   }
   double x(double shift) const { return at(place(shift)); }
   double at(double place) const {
-    return kLeft + (place - low_) / (high_ - low_) * (kWidth - kLeft - kRight);
+    return kLeft + (place - low_) / (high_ - low_) * (width_ - kLeft - kRight);
   }
   double y(double count) const {
     return kHeight - kBottom - count / std::max<double>(most_, 1) * (kHeight - kTop - kBottom);
@@ -72,28 +78,33 @@ class StaircasePicture {
   void count_axis() {
     const auto step = static_cast<Index>(std::max(1.0, tick_step(std::max<double>(most_, 1), 6)));
     for (Index count = 0; count <= most_; count += step) {
-      line(kLeft, y(count), kWidth - kRight, y(count), "class=\"s-rule\" stroke=\"#e2e2e2\"");
+      line(kLeft, y(count), width_ - kRight, y(count), "class=\"s-rule\" stroke=\"#e2e2e2\"");
       text(kLeft - 8, y(count) + 4, "end", grouped(count));
     }
-    text(kLeft - 8, kTop - 8, "end", "count");
+    text(kLeft - 8, kTop - 14, "end", "count");
   }
 
   void shift_axis(const std::string& axis) {
-    line(kLeft, y(0), kWidth - kRight, y(0), "class=\"s-axis\" stroke=\"#222222\"");
+    line(kLeft, y(0), width_ - kRight, y(0), "class=\"s-axis\" stroke=\"#222222\"");
     if (logarithmic_) {
-      const int parts = 4;
+      const int parts = narrow_ ? 3 : 4;
       for (int k = 0; k <= parts; ++k) {
         const double where = low_ + (high_ - low_) * k / parts;
         tick(at(where), fmt::format("{:.4g}", points_.front().shift < 0 ? -std::pow(10.0, -where)
                                                                         : std::pow(10.0, where)));
       }
     } else {
-      const double step = tick_step(high_ - low_, 6);
+      const double step = tick_step(high_ - low_, narrow_ ? 4 : 6);
       for (double where = std::ceil(low_ / step) * step; where <= high_ + step * 1e-9; where += step) {
         tick(at(where), fmt::format("{:.6g}", std::fabs(where) < step * 1e-9 ? 0.0 : where));
       }
     }
-    text((kLeft + kWidth - kRight) / 2, kHeight - 14, "middle", axis);
+    double line_y = kHeight - 14;
+    for (const std::string& words : wrapped(axis, width_ - 16, 13)) {
+      text(narrow_ ? width_ / 2 : (kLeft + width_ - kRight) / 2, line_y, "middle", words);
+      line_y += 17;
+    }
+    height_ = line_y - 3;
   }
 
   void tick(double where, const std::string& words) {
@@ -112,10 +123,10 @@ class StaircasePicture {
       const double left = x(a.shift), right = std::max(x(b.shift), left + 1.5);
       const double top = y(std::max(a.count, b.count)), bottom = y(std::min(a.count, b.count));
       svg_ += fmt::format(
-          "<rect x=\"{:.2f}\" y=\"{:.2f}\" width=\"{:.2f}\" height=\"{:.2f}\" fill=\"url(#open)\" "
+          "<rect x=\"{:.2f}\" y=\"{:.2f}\" width=\"{:.2f}\" height=\"{:.2f}\" fill=\"url(#{})\" "
           "class=\"s-jump\" stroke=\"#8a5a00\">"
           "<title>{}</title></rect>\n",
-          left, top, right - left, bottom - top,
+          left, top, right - left, bottom - top, pattern(),
           escaped(fmt::format("{} between {} and {}", b.count - a.count, exact(a.shift), exact(b.shift))));
     }
     for (const StaircasePoint& point : points_) {
@@ -127,9 +138,11 @@ class StaircasePicture {
   }
 
   const std::vector<StaircasePoint>& points_;
-  bool logarithmic_;
+  bool logarithmic_, narrow_;
+  double width_ = narrow_ ? 380 : 760;
   double low_ = 0, high_ = 1;
   Index most_ = 0;
+  double height_ = kHeight;  ///< with all lines of the axis
   std::string svg_;
 };
 
@@ -149,13 +162,13 @@ std::string meaning_of(const std::vector<ShiftCount>& counts) {
 
 }  // namespace
 
-std::string staircase_svg(const Outcome& outcome, bool logarithmic) {
+std::string staircase_svg(const Outcome& outcome, bool logarithmic, ChartWidth width) {
   if (!outcome.count) return {};
   const std::vector<StaircasePoint> points = known_points(outcome.count->counts);
   if (points.empty()) return {};
   const bool one_sign = points.front().shift > 0 || points.back().shift < 0;
   const std::string meaning = meaning_of(outcome.count->counts);
-  return StaircasePicture(points, logarithmic && one_sign)
+  return StaircasePicture(points, logarithmic && one_sign, width)
       .draw(meaning, axis_of(meaning) + ": " + meaning + "; hatched: the count jumps somewhere in there");
 }
 

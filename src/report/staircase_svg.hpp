@@ -3,6 +3,7 @@
 
 #include <string>
 
+#include "report/chart.hpp"
 #include "stanchion/outcome.hpp"
 
 namespace stanchion {
@@ -11,6 +12,6 @@ namespace stanchion {
 /// a hatched block where it jumps somewhere between two shifts, one mark a count. Empty when `outcome` has no
 /// counts. The shifts are drawn on a logarithmic axis when `logarithmic` (all of one sign). Reproducible; for
 /// pages that embed it as it is.
-std::string staircase_svg(const Outcome& outcome, bool logarithmic);
+std::string staircase_svg(const Outcome& outcome, bool logarithmic, ChartWidth width = ChartWidth::kWide);
 
 }  // namespace stanchion

@@ -79,7 +79,7 @@
     if (!unseen(element) && !(element.labels?.length || element.getAttribute("aria-label"))) faults.push(`no label: ${short(element)}`);
   }
   for (const element of all.filter((one) => one.matches("table"))) {
-    if (!element.caption?.textContent || !element.querySelector("th[scope]")) faults.push(`no caption or heads: ${short(element)}`);
+    if (!(element.caption?.textContent || element.getAttribute("aria-label")) || !element.querySelector("th[scope]")) faults.push(`no caption or heads: ${short(element)}`);
   }
   for (const element of all.filter((one) => one.matches("fieldset"))) if (!element.querySelector("legend")?.textContent) faults.push("fieldset without legend");
   for (const element of document.querySelectorAll("img")) if (element.getAttribute("alt") === null) faults.push("picture without alt");
