@@ -108,7 +108,7 @@ struct CountOutcome {
   std::vector<std::string> sentences;  ///< consequences worth saying (convexity, factors on the other side)
 };
 
-/// Values that lie between two neighbouring shifts of a sweep.
+/// Values between two shifts of a sweep, or around one that lies on a value. Each is counted in one of them.
 struct Jump {
   double low = 0, high = 0;
   Index count = 0;  ///< of values in [low, high]; for K not definite: change of the inertia, of either sign

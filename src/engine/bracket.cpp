@@ -105,7 +105,10 @@ class Bracketer {
 
   std::optional<bool> none_in_range() const {
     if (counter_.kind() == CountKind::kDirections) return std::nullopt;
-    if (answer_.complete && answer_.complete->count) return *answer_.complete->count == 0;
+    if (answer_.complete && answer_.complete->count) {
+      if (*answer_.complete->count > 0 && *answer_.complete->count == on_ends_) return std::nullopt;
+      return *answer_.complete->count == 0;
+    }
     if (!answer_.critical.empty()) return false;
     return std::nullopt;
   }
@@ -123,7 +126,7 @@ class Bracketer {
   // -------------------------------------------------------------------------------------------------
 
   Result<bool> by_residuals(const ValueRange& range) {
-    auto answer = bracket_by_residuals(counter_, request_, context_, {range, asked_.first, asked_.side},
+    auto answer = bracket_by_residuals(counter_, request_, context_, {range, true, asked_.first, asked_.side},
                                        pool_, outcome_);
     if (!answer.ok()) return answer.status();
     known_ = std::move(answer->counts);
@@ -139,6 +142,13 @@ class Bracketer {
     take(*answer->found);
     answer_.more_than_asked = answer->more_than_asked;
     say_number_found(answer->fewer_than_asked);
+    on_ends_ = answer->on_ends;
+    if (on_ends_ > 0) {
+      counter_.warn(
+          "end-on-value",
+          "an end of the range lies on a value, or too close to it to tell on which side: the value is "
+          "listed, and what is complete goes on behind it. Remedy: give the end a little elsewhere");
+    }
     return true;
   }
 
@@ -284,6 +294,7 @@ class Bracketer {
   Outcome& outcome_;
   BracketOutcome& answer_;
   Staircase known_;
+  Index on_ends_ = 0;  ///< values that may lie on either side of an end asked
 };
 
 Result<Outcome> bracket_model(ModelInput model, const Request& request, const RunContext& context,

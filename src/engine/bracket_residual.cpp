@@ -14,6 +14,9 @@ namespace {
 /// certified.
 constexpr double kGap = 1e-5;
 constexpr int kMostAttempts = 5;
+/// How far behind an end that lies on a value the range goes on, relative to it: farther than intervals are
+/// wide.
+constexpr double kNearestEnd = 1e-6, kFarthestEnd = 0.05;
 
 class ResidualBrackets {
  public:
@@ -170,49 +173,63 @@ class ResidualBrackets {
   Result<std::optional<FoundRange>> bracket_range() {
     const ValueRange range = countable(counter_, question_.range);
     std::optional<CountFact> low, high;
-    if (counter_.two_sided()) {
-      // K is definite: n(0) = 0, and 0 itself is never a value.
-      const CountFact zero = counter_.fact_at_origin();
-      for (auto [fact, end] : {std::pair{&low, *range.low}, std::pair{&high, *range.high}}) {
-        if (end == 0) {
-          *fact = zero;
-          continue;
-        }
-        auto counted = count_at(end);
-        if (!counted.ok()) return counted.status();
-        *fact = *counted;
-      }
-      if (!low) return nothing();
-    } else {
-      if (range.low) {
-        auto counted = count_at(*range.low);
-        if (!counted.ok()) return counted.status();
-        low = *counted;
-        if (!low) return nothing();
-      }
-      auto counted = count_at(*range.high);
+    if (range.low) {
+      auto counted = end_at(*range.low, -1);
       if (!counted.ok()) return counted.status();
-      high = *counted;
+      low = *counted;
+      if (!low) return nothing();
     }
-    if (!high || !high->exact() || (low && !low->exact())) return nothing();
-    const double from = range.low.value_or(lowest()), to = *range.high;
-    const Offset between = high->least - (low ? low->least : 0);
-    if (between == 0) return proof_.settle({}, low, *high, from, to);
+    auto counted = end_at(*range.high, 1);
+    if (!counted.ok()) return counted.status();
+    high = *counted;
+    if (!high) return nothing();
+    auto found = bracket_between(low, *high, low ? low->shift : lowest(), high->shift);
+    if (!found.ok() || !*found) return found;
+    return std::optional(
+        cut_to(std::move(**found), range.low.value_or(lowest()), *range.high, answer_.on_ends));
+  }
+
+  /// The count at an end of the range; where that lies on a value, and may move, at a place behind the value.
+  Result<std::optional<CountFact>> end_at(double end, int outwards) {
+    if (counter_.two_sided() && end == 0) {  // K is definite: n(0) = 0, and 0 itself is never a value
+      return std::optional<CountFact>(counter_.fact_at_origin());
+    }
+    auto asked = count_at(end);
+    if (!asked.ok() || (*asked && (*asked)->exact())) return asked;
+    if (!question_.past_values) return std::optional<CountFact>();
+    const auto band = *asked ? (*asked)->band : std::nullopt;
+    const double size = std::fabs(end), edge = !band ? end : outwards > 0 ? band->second : band->first;
+    const double start = std::fabs(edge - end) < kFarthestEnd * size ? edge : end;
+    for (double part = kNearestEnd; part < kFarthestEnd; part *= 32) {
+      const double shift =
+          shortest_between(start + outwards * part * size, start + 2 * outwards * part * size);
+      auto beyond = count_at(shift);
+      if (!beyond.ok()) return beyond;
+      if (*beyond && (*beyond)->exact()) return beyond;
+    }
+    return std::optional<CountFact>();
+  }
+
+  /// All values between two exact counts.
+  Result<std::optional<FoundRange>> bracket_between(const std::optional<CountFact>& low,
+                                                    const CountFact& high, double from, double to) {
+    const Offset between = high.least - (low ? low->least : 0);
+    if (between == 0) return proof_.settle({}, low, high, from, to);
     // From the outermost side of zero inwards everything comes before what is asked.
-    const Offset outside = std::max<Offset>(0, high->least) +
+    const Offset outside = std::max<Offset>(0, high.least) +
                            (counter_.two_sided() ? std::max<Offset>(0, -low->least) : Offset{0});
     if (outside > counter_.pencil().analysis().tree.rows) return nothing();
     if (lies_inside(outside, between, from, to)) {
       auto started = search_->start_inside(from, to, static_cast<Index>(between));
       if (!started.ok()) return started.status();
       if (*started) {
-        auto found = search_inside(low, *high, from, to, static_cast<std::size_t>(between));
+        auto found = search_inside(low, high, from, to, static_cast<std::size_t>(between));
         if (!found.ok() || *found) return found;
       }
     }
     const Index most = static_cast<Index>(outside) + kBlockVectors;
     search_->start(static_cast<Index>(outside), {most, counter_.kind() == CountKind::kBelow ? 0 : most});
-    return search_outside(low, *high, from, to);
+    return search_outside(low, high, from, to);
   }
 
   /// Whether the values asked lie so far inside that one more factorization, among them, pays.

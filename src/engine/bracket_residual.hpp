@@ -8,6 +8,7 @@ namespace stanchion {
 
 struct ResidualQuestion {
   ValueRange range;            ///< low absent: from everything
+  bool past_values = false;    ///< where an end lies on a value, the range may go on behind that
   std::optional<Index> first;  ///< instead of a range
   Side side = Side::kPositive;
 };
@@ -17,6 +18,7 @@ struct ResidualAnswer {
   Staircase counts;                 ///< made on the way, for whoever goes on
   Index more_than_asked = 0;        ///< taken in because a cluster goes on at the end
   Index fewer_than_asked = 0;       ///< so many do not exist in the range that was searched
+  Index on_ends = 0;                ///< of those found, so many may lie on either side of an end asked
 };
 
 /// The values asked, in groups with disjoint intervals whose number equals the certified count of the range.

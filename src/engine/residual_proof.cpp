@@ -30,6 +30,19 @@ void weaken(CountedRange& range, Level level, double failure_probability) {
     range.failure_probability = range.failure_probability.value_or(0) + failure_probability;
 }
 
+/// What lies between new ends of a range and the old ones is known from its intervals, so from their base
+/// too.
+void rest_on_intervals(FoundRange& found) {
+  CountedRange& range = *found.complete;
+  double failure[2] = {0, 0};
+  for (const FoundValues& values : found.values) {
+    range.level = std::min(range.level, values.level);
+    double& side = failure[values.low < 0];
+    if (values.level == Level::kStatistical) side = std::max(side, values.failure_probability);
+  }
+  weaken(range, range.level, failure[0] + failure[1]);
+}
+
 }  // namespace
 
 Result<std::optional<CountFact>> ResidualProof::count_at(double shift) {
@@ -169,15 +182,8 @@ FoundRange nearest_of(FoundRange all, Index wanted) {
     reach = std::max(reach, outer(all.values[many]));
   }
   if (many < all.values.size()) {
-    // What lies between the new ends and the old ones is known from its intervals, so from their base too.
+    rest_on_intervals(all);
     CountedRange& range = *all.complete;
-    double failure[2] = {0, 0};
-    for (const FoundValues& values : all.values) {
-      range.level = std::min(range.level, values.level);
-      double& side = failure[values.low < 0];
-      if (values.level == Level::kStatistical) side = std::max(side, values.failure_probability);
-    }
-    weaken(range, range.level, failure[0] + failure[1]);
     const double end = shortest_between(reach, inner(all.values[many]));
     range.from = -end;
     range.to = end;
@@ -186,6 +192,35 @@ FoundRange nearest_of(FoundRange all, Index wanted) {
   }
   std::sort(all.values.begin(), all.values.end(),
             [](const FoundValues& a, const FoundValues& b) { return a.low < b.low; });
+  return all;
+}
+
+FoundRange cut_to(FoundRange all, double from, double to, Index& on_ends) {
+  on_ends = 0;
+  CountedRange& range = *all.complete;
+  if (range.from == from && range.to == to) return all;
+  rest_on_intervals(all);
+  double lowest = to, highest = from;             // of what is kept
+  double before = range.from, behind = range.to;  // the nearest left out
+  std::vector<FoundValues> kept;
+  Index number = 0;
+  for (FoundValues& values : all.values) {
+    if (values.high < from) {
+      before = std::max(before, values.high);
+    } else if (values.low > to) {
+      behind = std::min(behind, values.low);
+    } else {
+      lowest = std::min(lowest, values.low);
+      highest = std::max(highest, values.high);
+      if (values.low <= from || values.high >= to) on_ends += values.count;
+      number += values.count;
+      kept.push_back(std::move(values));
+    }
+  }
+  range.from = lowest > from ? from : shortest_between(before, lowest);
+  range.to = highest < to ? to : shortest_between(highest, behind);
+  range.count = number;
+  all.values = std::move(kept);
   return all;
 }
 

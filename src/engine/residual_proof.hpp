@@ -63,6 +63,10 @@ class ResidualProof {
 /// not told apart from the last of them; all where there are no more. What is left out bounds the range.
 FoundRange nearest_of(FoundRange all, Index wanted);
 
+/// Of a complete range the values that lie, or may lie, between `from` and `to`, both inside it. The range
+/// ends there again unless one may lie on either side: then it ends behind that. `on_ends`: how many may.
+FoundRange cut_to(FoundRange all, double from, double to, Index& on_ends);
+
 /// A complete range that ends at 0, and one that begins there.
 FoundRange joined(FoundRange below, FoundRange above);
 

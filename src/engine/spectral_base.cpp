@@ -10,6 +10,9 @@ namespace {
 /// Below this many operations one more factorization costs less than anyone notices, and a proof says more
 /// than a test.
 constexpr double kProofIsCheap = 2e9;
+/// From a tau at which values behind the zeros are not seen to the next: they lie farther out than that.
+constexpr double kStride = 1e10;
+constexpr int kMostStrides = 4;
 
 bool small(const PencilCounter& counter) {
   return counter.pencil().analysis().forecast.factor_flops < kProofIsCheap;
@@ -88,27 +91,41 @@ class BaseSettler {
     return move_near_elastic(static_cast<std::size_t>(below + rigid_));
   }
 
-  /// `before`: number of values below the first elastic one.
+  /// `before`: number of values below the first elastic one. Where nothing but those is seen, what comes
+  /// after them is lost in their rounding (kNoise), and a larger tau shows it.
   Status move_near_elastic(std::size_t before) {
-    double elastic = 0;
-    {
-      ModeSearch search(counter_, *base_, request_, context_, pool_, outcome_);
-      search.start(static_cast<Index>(before) + 4, {static_cast<Index>(before) + 8, 0});
-      int looks = 0;
-      auto done = search.iterate([&] { return ++looks == 2; });
-      if (!done.ok()) return done.status();
-      const Candidates found = search.candidates(Side::kPositive);
-      if (found.list.size() <= before) return {};
-      elastic = base_->shift_of(found.list[before].theta);
+    const double began = base_->tau;
+    for (int k = 0; k < kMostStrides; ++k) {
+      auto elastic = first_elastic(before);
+      if (!elastic.ok()) return elastic.status();
+      const double tau = base_->tau, value = elastic->value_or(kStride * tau);
+      if (!(value > 0) || (tau < 30 * value && tau > value / 1000)) return {};
+      auto moved = move_to(value);
+      if (!moved.ok()) return moved.status();
+      if (!*moved || *elastic) return {};
     }
-    const double tau = base_->tau;
-    if (!(elastic > 0) || (tau < 30 * elastic && tau > elastic / 1000)) return {};
+    auto back = move_to(began);
+    return back.ok() ? Status{} : back.status();
+  }
+
+  Result<bool> move_to(double tau) {
     std::optional<SpectralBase> old = std::move(base_);
     base_.reset();
-    auto moved = try_tau(elastic);
-    if (!moved.ok()) return moved.status();
-    if (!*moved) base_ = std::move(old);
-    return {};
+    auto moved = try_tau(tau);
+    if (moved.ok() && !*moved) base_ = std::move(old);
+    return moved;
+  }
+
+  /// An estimate of value number `before` + 1; nothing where it is not seen.
+  Result<std::optional<double>> first_elastic(std::size_t before) {
+    ModeSearch search(counter_, *base_, request_, context_, pool_, outcome_);
+    search.start(static_cast<Index>(before) + 4, {static_cast<Index>(before) + 8, 0});
+    int looks = 0;
+    auto done = search.iterate([&] { return ++looks == 2; });
+    if (!done.ok()) return done.status();
+    const Candidates found = search.candidates(Side::kPositive);
+    if (found.list.size() <= before) return std::optional<double>{};
+    return std::optional(base_->shift_of(found.list[before].theta));
   }
 
   /// K is not definite, and how many values lie below 0 and at it has been found with that.

@@ -62,6 +62,14 @@ bool is_open(const ShiftCount& count) {
   return !count.below || count.level == Level::kNone;
 }
 
+/// Whether the band around a shift reaches into the stretches beside it.
+bool overlap(const std::vector<Jump>& jumps) {
+  for (std::size_t k = 1; k < jumps.size(); ++k) {
+    if (jumps[k].low < jumps[k - 1].high) return true;
+  }
+  return false;
+}
+
 void write_jumps(Page& page, const Outcome& outcome) {
   const std::vector<Jump>& jumps = outcome.sweep->jumps;
   const std::string who = what(*outcome.count);
@@ -92,6 +100,10 @@ void write_jumps(Page& page, const Outcome& outcome) {
     rows.push_back({exact(jump.low), exact(jump.high), rounded(jump.high - jump.low), grouped(jump.count)});
   }
   page.table(rows, 3);
+  if (overlap(jumps)) {
+    page.sentence(
+        "Stretches overlap at a shift on a value: each value is counted once, and may lie in both of them.");
+  }
 }
 
 }  // namespace

@@ -41,7 +41,8 @@ class Staircase {
   std::vector<Contradiction> contradictions() const;
 
   /// Where n grows, ascending: between neighbouring shifts, and inside the bands of shifts that lie on
-  /// values. The stretches of one jump hold exactly `count` values; facts must not contradict each other.
+  /// values. Each value is counted in one stretch; stretches overlap where a band reaches into its
+  /// neighbours, and may then hold more than is counted in them. Facts must not contradict each other.
   std::vector<Jump> jumps() const;
 
   /// Value number k (n grows from k - 1 to k): the tightest closed interval that the facts give, with what

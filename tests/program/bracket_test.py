@@ -28,6 +28,16 @@ def cube(n):
     return n**3, entries
 
 
+def congruent(values):
+    """L^T diag(values) L with L unit lower bidiagonal: integers, so that pencils of two such matrices have values that are known."""
+    entries = {}
+    for i, value in enumerate(values):
+        entries[i, i] = value + (values[i + 1] if i + 1 < len(values) else 0)
+        if i > 0:
+            entries[i, i - 1] = value
+    return entries
+
+
 class BracketTest(ProgramTest):
     def setUp(self):
         super().setUp()
@@ -52,6 +62,40 @@ class BracketTest(ProgramTest):
         for before, after in zip(document["critical"], document["critical"][1:]):
             self.assertLessEqual(before["high"], after["low"])
         return total
+
+    def test_an_end_on_a_value(self):
+        # K = L^T D L and G = -L^T S L with integers: the factors are D / S, exactly.
+        signs = [1] * 9 + [-1] * 4
+        factors = [2, 2, 2, 5, 7, 7, 9, 12, 40, -3, -7, -7, -8]
+        path = self.matrix("D.mtx", 13, congruent([abs(factor) for factor in factors]))
+        geometric = self.matrix("S.mtx", 13, congruent([-sign for sign in signs]))
+        for low, high, expected, moved in ((3, 7, [5, 7, 7], 1), (2, 9, [2, 2, 2, 5, 7, 7, 9], 2), (-7, 2, [-7, -7, -3, 2, 2, 2], 2),
+                                           (3, 8, [5, 7, 7], 0), (10, 11, [], 0)):
+            document = self.bracket(0, path, "--geometric", geometric, "--from", low, "--to", repr(high))
+            self.hold(document, factors)
+            self.assertEqual(sum(value["multiplicity"] for value in document["critical"]), len(expected))
+            complete = document["complete"]
+            self.assertEqual(complete["count"], len(expected))
+            self.assertEqual(sum(complete["from"] < factor < complete["to"] for factor in factors), len(expected))
+            self.assertEqual((complete["from"] != low) + (complete["to"] != high), moved)
+            warned = "end-on-value" in [warning["code"] for warning in document["warnings"]]
+            self.assertEqual(warned, moved > 0)
+            self.assertLessEqual(document["work"]["factorizations"], 24)
+        # Whether a factor of exactly 2 is below 2 is not decided by anything that rounds.
+        for below, code, none in ((2, 3, None), (1.9, 0, True), (2.1, 1, False), (-3, 3, None)):
+            document = self.bracket(code, path, "--geometric", geometric, "--below", below, "--expect", "none-below")
+            self.assertIs(document["none_below"], none)
+
+    def test_values_far_behind_the_zeros_are_seen(self):
+        # Rows without stiffness have the scale of their mass; what follows their zeros is 1e17 times the first guess of a shift.
+        stiffness = self.matrix("K9.mtx", 9, diagonal([0, 0, 0, 1.4e10, 1.4e10, 3e10, 4e10, 5e10, 6e10]))
+        mass = self.matrix("M9.mtx", 9, diagonal([1] * 9))
+        document = self.bracket(0, stiffness, "--mass", mass, "--first", 3)
+        self.assertEqual([value["multiplicity"] for value in document["critical"]], [3, 2, 1])
+        self.assertEqual([value["rigid_body"] for value in document["critical"]], [True, False, False])
+        for value, true in zip(document["critical"], (0, 1.4e10, 3e10), strict=True):
+            self.assertTrue(value["low"] <= true <= value["high"])
+        self.assertNotIn("fewer-than-asked", [warning["code"] for warning in document["warnings"]])
 
     def test_values_below_where_the_mass_is_indefinite_are_those_between_0_and_the_end(self):
         # K = I and M diagonal: the values are the reciprocals of the masses, two of them negative.

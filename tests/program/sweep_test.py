@@ -44,6 +44,17 @@ class SweepTest(ProgramTest):
         self.assertTrue(double[0]["low"] <= 2 / 3 <= double[0]["high"])
         self.assertLessEqual(double[0]["high"] - double[0]["low"], 1e-6)
 
+    def test_stretches_that_overlap_are_said_to(self):
+        # A shift on the double value, whose band reaches into the stretch behind it; then none on a value.
+        path = self.matrix("D.mtx", 4, diagonal([1, 2, 2, 3]))
+        for arguments, overlap in ((("--from", 0.5, "--to", 3.5, "--points", 3), True), (("--from", 0.5, "--to", 3.4, "--points", 3), False)):
+            document = self.expect(0, "sweep", path, *arguments)
+            self.assertEqual(sum(jump["count"] for jump in document["jumps"]), 4)
+            self.assertTrue(all(jump["count"] <= sum(jump["low"] <= value <= jump["high"] for value in (1, 2, 2, 3))
+                                for jump in document["jumps"]))
+            text = self.run_program("sweep", path, *arguments).stdout
+            self.assertEqual("Stretches overlap" in text, overlap, text)
+
     def test_both_signs_of_the_factor_in_one_sweep(self):
         geometric = self.matrix("B.mtx", 3, diagonal([-1, 1, 1]))  # factors 1, -2, -3
         path = self.matrix("D.mtx", 3, diagonal([1, 2, 3]))
