@@ -4,6 +4,7 @@
 #include <utility>
 
 #include "base/clock.hpp"
+#include "diagnose/dependent_constraints.hpp"
 #include "diagnose/local_accuracy.hpp"
 #include "diagnose/naming.hpp"
 #include "diagnose/near_choice.hpp"
@@ -55,7 +56,8 @@ Offset diagnosis_bytes(Index rows, Index zero, Index negative, const LocateOptio
   Offset columns = std::max(3 * near + 2 * kBlock, 2 * near + 7 * kBlock);
   if (negative > 0)
     columns = std::max(columns, near + negative_columns(std::min(negative, options.most)) + 2 * kBlock);
-  return Offset{rows} * (columns * Offset{sizeof(double)} + kStructureBytes);
+  return Offset{rows} * (columns * Offset{sizeof(double)} + kStructureBytes) +
+         dependent_constraint_bytes(rows, zero);
 }
 
 }  // namespace stanchion

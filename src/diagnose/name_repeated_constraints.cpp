@@ -35,16 +35,20 @@ void add_part(Evidence& e, Index part, const std::vector<const RepeatedConstrain
   e.nullity[part] += direction.count;
   CauseFacts facts;
   facts.place = place_of(direction);
+  facts.follow = !members.front()->in_proportion;
   e.add(std::move(direction), std::move(facts));
 }
 
 }  // namespace
 
 void name_repeated_constraints(Evidence& evidence) {
-  std::map<Index, std::vector<const RepeatedConstraint*>> by_part;
-  for (const RepeatedConstraint& one : evidence.motions.of_constraints)
-    by_part[evidence.part_of_row(one.rows.front())].push_back(&one);
-  for (const auto& [part, members] : by_part) add_part(evidence, part, members);
+  for (const bool in_proportion : {true, false}) {
+    std::map<Index, std::vector<const RepeatedConstraint*>> by_part;
+    for (const RepeatedConstraint& one : evidence.motions.of_constraints) {
+      if (one.in_proportion == in_proportion) by_part[evidence.part_of_row(one.rows.front())].push_back(&one);
+    }
+    for (const auto& [part, members] : by_part) add_part(evidence, part, members);
+  }
 }
 
 }  // namespace stanchion

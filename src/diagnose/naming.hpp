@@ -8,7 +8,7 @@ namespace stanchion {
 /// Null motions of single nodes, gathered by what they are.
 void name_node_motions(Evidence& evidence);
 
-/// Constraints that repeat others, one entry a part.
+/// Constraints that repeat others, one entry a part, and those that follow from several others, another one.
 void name_repeated_constraints(Evidence& evidence);
 
 /// Zero (or weak) directions of whole parts and clusters, purified and held against the matrix.

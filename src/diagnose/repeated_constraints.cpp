@@ -5,6 +5,8 @@
 #include <span>
 #include <utility>
 
+#include "diagnose/dependent_constraints.hpp"
+
 namespace stanchion {
 namespace {
 
@@ -35,9 +37,13 @@ class Finder {
       while (end < columns_.size() && end - begin < kMostTogether &&
              compare(columns_[begin], columns_[end]) == 0)
         ++end;
-      if (end - begin > 1) add_group(std::span(columns_).subspan(begin, end - begin));
+      const auto group = std::span(columns_).subspan(begin, end - begin);
+      if (group.size() > 1) add_group(group);
+      distinct_.push_back(as_one(group));
       begin = end;
     }
+    for (RepeatedConstraint& one : find_dependent_constraints(std::move(distinct_), s_.rows))
+      found_.push_back(std::move(one));
     return std::move(found_);
   }
 
@@ -136,6 +142,24 @@ class Finder {
     }
   }
 
+  /// With columns c_j u: the weights c_j over their length, orthogonal to the vectors of the group.
+  DistinctConstraint as_one(std::span<const Column> group) const {
+    DistinctConstraint one;
+    double sum = 0;
+    for (const Column& column : group) {
+      const double size = entries_of(column).front().value;
+      one.rows.push_back(column.row);
+      one.weight.push_back(size);
+      sum += size * size;
+    }
+    const double length = std::sqrt(sum);
+    for (double& weight : one.weight) weight /= length;
+    const auto entries = entries_of(group.front());
+    for (const Entry& entry : entries)
+      one.column.push_back({entry.row, entry.value / entries.front().value * length});
+    return one;
+  }
+
   double residual(std::span<const Column> group, const std::vector<double>& entry) const {
     double most = 0;
     for (std::size_t k = 0; k < entries_of(group.front()).size(); ++k) {
@@ -151,6 +175,7 @@ class Finder {
   std::vector<Index> column_of_;  ///< position -> place in columns_ before they are sorted, or -1
   std::vector<Column> columns_;
   std::vector<Entry> entries_;
+  std::vector<DistinctConstraint> distinct_;
   std::vector<RepeatedConstraint> found_;
 };
 

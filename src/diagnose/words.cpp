@@ -157,8 +157,11 @@ std::string sentence_of(const CauseFacts& f) {
                           : ", as past a critical load");
     case Cause::kRedundantConstraint:
       return fmt::format(
-          "{} others: {} can exchange force among themselves without any effect on the structure.",
-          f.count == 1 ? "One constraint repeats" : fmt::format("{} constraints repeat", f.count),
+          "{}: {} can exchange force among themselves without any effect on the structure.",
+          f.follow       ? (f.count == 1 ? "One constraint follows from others together"
+                                         : fmt::format("{} constraints follow from others together", f.count))
+          : f.count == 1 ? "One constraint repeats others"
+                         : fmt::format("{} constraints repeat others", f.count),
           f.nodes > 1 ? fmt::format("the multipliers of {}, {} among them,", nodes_in_words(f), node_alone(f))
                       : "the multipliers of " + node_alone(f));
     case Cause::kNearMechanism:
@@ -213,6 +216,10 @@ std::string remedy_of(const CauseFacts& f) {
       return "Count the critical factors of the load (count --geometric), and look at the load level of this "
              "state.";
     case Cause::kRedundantConstraint:
+      if (f.follow)
+        return "Leave out one constraint of every set that closes on itself; it does no harm to the "
+               "structure, "
+               "but the forces in the set are not determined.";
       return "Remove the constraints that repeat others; they do no harm to the structure, but the forces in "
              "them are "
              "not determined.";

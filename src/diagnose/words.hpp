@@ -18,6 +18,7 @@ struct CauseFacts {
   std::string dof;                 ///< "uz", for unattached dofs
   std::string other_place, along;  ///< a spring's other node and its direction; empty: to the ground
   bool essential = false;          ///< the spring: without it nothing holds the motion
+  bool follow = false;             ///< constraints: each from several others together
   bool chain = false;              ///< as many motions as joints, or nearly
   bool pattern = false;            ///< neighbouring nodes move against each other
   bool across_bars = false;        ///< an unattached displacement of a node that has stiffness along others

@@ -8,6 +8,7 @@
 
 #include "base/clock.hpp"
 #include "extended/front_worker.hpp"
+#include "numeric/stack_room.hpp"
 
 namespace stanchion {
 namespace {
@@ -22,10 +23,14 @@ template <class Scalar>
 class ScalarFactorizer {
  public:
   ScalarFactorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
-                   ThreadPool& pool)
-      : run_{analysis, matrix, options, {}, MemoryLedger(options.memory_cap_bytes)}, pool_(pool) {
+                   ThreadPool& pool, Offset stack_times)
+      : run_{analysis, matrix, options, {}, MemoryLedger(options.memory_cap_bytes)},
+        pool_(pool),
+        stack_times_(stack_times) {
     run_.waiting.resize(static_cast<std::size_t>(analysis.tree.fronts));
   }
+
+  bool stack_full() const { return run_.stack_full; }
 
   Result<Factorization> run() {
     const Stopwatch watch;
@@ -88,9 +93,10 @@ class ScalarFactorizer {
                           std::min(1.0, flops_done_ / std::max(1.0, run_.analysis.forecast.front_flops)));
   }
 
-  bool start(std::unique_ptr<Worker>& worker, Offset arena_doubles) {
+  bool start(std::unique_ptr<Worker>& worker, Offset forecast_doubles) {
     return guarded("the stack of fronts", [&] {
-      worker = std::make_unique<Worker>(run_, arena_doubles * kPlanes);
+      const Offset doubles = stack_doubles(forecast_doubles, run_.analysis.tree.rows, stack_times_);
+      worker = std::make_unique<Worker>(run_, doubles * kPlanes);
       return Status{};
     });
   }
@@ -136,6 +142,7 @@ class ScalarFactorizer {
 
   ScalarRun run_;
   ThreadPool& pool_;
+  Offset stack_times_;  ///< stacks hold so many times what is forecast
   std::vector<std::unique_ptr<Worker>> workers_;
   std::mutex mutex_, progress_mutex_;
   double flops_done_ = 0;
@@ -146,7 +153,9 @@ template <class Scalar>
 Result<Factorization> factorize_in(const Analysis& analysis, const ShiftedMatrix& matrix,
                                    const FactorOptions& options, ThreadPool& pool) {
   try {
-    return ScalarFactorizer<Scalar>(analysis, matrix, options, pool).run();
+    return run_with_room([&](Offset stack_times) {
+      return std::make_unique<ScalarFactorizer<Scalar>>(analysis, matrix, options, pool, stack_times);
+    });
   } catch (const std::bad_alloc&) {
     return no_memory("the numeric phase");
   }

@@ -53,7 +53,8 @@ struct ScalarRun {
   std::vector<WaitingBlock> waiting;  ///< per front, until its parent is assembled
   MemoryLedger memory;
   ScalarProbe probe{};
-  std::atomic<bool> abandon{false};  ///< a worker stopped, broke down, failed or was cancelled
+  std::atomic<bool> abandon{false};     ///< a worker stopped, broke down, failed or was cancelled
+  std::atomic<bool> stack_full{false};  ///< a front found no room on a stack that was sized by the forecast
 };
 
 template <class Scalar>

@@ -8,6 +8,7 @@
 #include "base/fault_words.hpp"
 #include "dense/blas.hpp"
 #include "numeric/front_worker.hpp"
+#include "numeric/stack_room.hpp"
 
 namespace stanchion {
 namespace {
@@ -69,9 +70,10 @@ template <class Scalar>
 class Factorizer {
  public:
   Factorizer(const Analysis& analysis, const ShiftedMatrix& matrix, const FactorOptions& options,
-             ThreadPool& pool)
+             ThreadPool& pool, Offset stack_times)
       : run_{analysis, matrix, options, {}, nullptr, MemoryLedger(options.memory_cap_bytes)},
         pool_(pool),
+        stack_times_(stack_times),
         memory_(options.workspace ? stock().take() : std::make_unique<WorkingMemory<Scalar>>()) {
     run_.waiting = std::move(memory_->waiting);
     run_.waiting.resize(static_cast<std::size_t>(analysis.tree.fronts));
@@ -87,6 +89,8 @@ class Factorizer {
     memory_->waiting = std::move(run_.waiting);
     stock().give(std::move(memory_));
   }
+
+  bool stack_full() const { return run_.stack_full; }
 
   Result<Factorization> run() {
     Stopwatch watch;
@@ -199,9 +203,10 @@ class Factorizer {
   }
 
   /// Makes the worker ready for this run, if it is not yet.
-  bool start(std::unique_ptr<FrontWorker<Scalar>>& worker, Offset arena_doubles) {
+  bool start(std::unique_ptr<FrontWorker<Scalar>>& worker, Offset forecast_doubles) {
     if (worker && worker->serves(run_)) return true;
     const Index rows = run_.analysis.tree.rows;
+    const Offset arena_doubles = stack_doubles(forecast_doubles, rows, stack_times_);
     try {
       if (!worker || !worker->fits(rows, arena_doubles)) {
         worker.reset();
@@ -235,6 +240,7 @@ class Factorizer {
 
   FactorRun<Scalar> run_;
   ThreadPool& pool_;
+  Offset stack_times_;  ///< stacks hold so many times what is forecast
   std::unique_ptr<WorkingMemory<Scalar>> memory_;
   std::mutex mutex_, progress_mutex_;
   Status status_;
@@ -252,13 +258,25 @@ Status check_fault(const Analysis& analysis, const Factorization& factorization)
           "run `stanchion selftest`; then try again on another machine"};
 }
 
+namespace {
+
+template <class Scalar>
+Result<Factorization> factorize_in(const Analysis& analysis, const ShiftedMatrix& matrix,
+                                   const FactorOptions& options, ThreadPool& pool) {
+  return run_with_room([&](Offset stack_times) {
+    return std::make_unique<Factorizer<Scalar>>(analysis, matrix, options, pool, stack_times);
+  });
+}
+
+}  // namespace
+
 Result<Factorization> factorize(const Analysis& analysis, const ShiftedMatrix& matrix,
                                 const FactorOptions& options, ThreadPool& pool) {
   try {
     use_single_threaded_blas();
-    if (!options.single) return Factorizer<double>(analysis, matrix, options, pool).run();
+    if (!options.single) return factorize_in<double>(analysis, matrix, options, pool);
     if (analysis.tree.rows > kMostSingleRows) return Status::internal("too many rows for single precision");
-    return Factorizer<float>(analysis, matrix, options, pool).run();
+    return factorize_in<float>(analysis, matrix, options, pool);
   } catch (const std::bad_alloc&) {
     return Status::resource_limit("out-of-memory", "the system has no more memory for the numeric phase", "",
                                   "free memory or use a machine with more memory");

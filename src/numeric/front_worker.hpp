@@ -43,7 +43,8 @@ struct FactorRun {
   Factor* factor = nullptr;                   ///< null: discard
   MemoryLedger memory;
   std::atomic<double> flops_done{0};
-  std::atomic<bool> abandon{false};  ///< a worker stopped, broke down, failed or was cancelled
+  std::atomic<bool> abandon{false};     ///< a worker stopped, broke down, failed or was cancelled
+  std::atomic<bool> stack_full{false};  ///< a front found no room on a stack that was sized by the forecast
   FaultProbe probe{};
 
   /// What makes a bound of a sum of bounds, each summed in Scalar: see src/inertia/error_bound.md, section 6.

@@ -67,6 +67,10 @@ std::string constrained_sentence(const ConstrainedOutcome& constrained, const Ce
   }
   if (!constrained.negative_range)
     return "Unresolved: how the structure stands on its constraints is not known.";
+  if (constrained.negative_range->first == constrained.negative_range->second) {
+    return fmt::format("On its constraints the structure has {}.",
+                       counted(constrained.negative_range->first, "negative direction"));
+  }
   return fmt::format("On its constraints the structure has between {} and {} negative directions.",
                      grouped(constrained.negative_range->first), grouped(constrained.negative_range->second));
 }
@@ -194,9 +198,10 @@ void write_constrained(Page& page, const ConstrainedOutcome& constrained) {
   }
   if (constrained.inertia) write_inertia(page, *constrained.inertia);
   if (constrained.negative_range) {
-    page.row("negative", fmt::format("between {} and {}: the rank of the constraints is not certified",
-                                     grouped(constrained.negative_range->first),
-                                     grouped(constrained.negative_range->second)));
+    const auto& [least, most] = *constrained.negative_range;
+    const std::string range =
+        least == most ? grouped(least) : fmt::format("between {} and {}", grouped(least), grouped(most));
+    page.row("negative", range + ": the rank of the constraints is not certified");
   }
   if (constrained.inertia || constrained.negative_range) {
     page.row("backed by", backing_in_words(constrained.inertia_backing));

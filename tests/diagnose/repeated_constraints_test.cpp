@@ -110,7 +110,7 @@ TEST(RepeatedConstraints, OneConstraintManyTimesOver) {
 }
 
 /// A ring of ties closes itself: no two of them are in proportion.
-TEST(RepeatedConstraints, ARingOfTiesIsLeftToTheIteration) {
+TEST(RepeatedConstraints, ARingOfTiesIsAnEntryOfItsOwn) {
   TiedChain chain;
   std::set<std::int64_t> ring{chain.tie(4, 9, 1, -1), chain.tie(9, 15, 1, -1), chain.tie(15, 4, 1, -1)};
   std::set<std::int64_t> pair{chain.tie(25, 28, 1, -1), chain.tie(28, 25, 1, -1)};
@@ -123,6 +123,99 @@ TEST(RepeatedConstraints, ARingOfTiesIsLeftToTheIteration) {
     EXPECT_EQ(nodes_of(one), one.moving_nodes == 3 ? ring : pair);
   }
   EXPECT_NE(found[0].moving_nodes, found[1].moving_nodes);
+}
+
+/// Rings over rings: more than the 62 zero directions of one part that the iteration looks at together.
+TEST(RepeatedConstraints, AHundredRingsAreOneEntryWithAllTheirNodes) {
+  TiedChain chain(350);
+  std::set<std::int64_t> ties;
+  for (int k = 0; k < 100; ++k) {
+    const int a = 1 + 3 * k, b = a + 17, c = a + 34;
+    ties.insert(chain.tie(a, b, 2, -2));
+    ties.insert(chain.tie(b, c, 0.5, -0.25));
+    ties.insert(chain.tie(c, a, 3, -6));
+  }
+  chain.model.shuffle(3);
+  const Outcome outcome = located(chain.model);
+  EXPECT_EQ(outcome.located->zero, 100);
+  EXPECT_EQ(outcome.located->not_located, 0);
+  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
+  const Direction& found = outcome.located->directions[0];
+  EXPECT_EQ(found.cause, Cause::kRedundantConstraint);
+  EXPECT_EQ(found.count, 100);
+  EXPECT_EQ(found.moving_nodes, static_cast<Index>(ties.size()));
+  EXPECT_LE(found.residual.value_or(1), 1e-12);
+}
+
+/// All of one strip hang together: of 2 n ties over n + 2 nodes n - 1 are too many.
+TEST(RepeatedConstraints, AStripThatHangsTogether) {
+  constexpr int kLength = 300;
+  TiedChain chain(kLength + 2);
+  for (int k = 1; k <= kLength; ++k) {
+    chain.tie(k, k + 1, 1, -1);
+    chain.tie(k, k + 2, 1, -1);
+  }
+  const Outcome outcome = located(chain.model);
+  EXPECT_EQ(outcome.located->zero, kLength - 1);
+  EXPECT_EQ(outcome.located->not_located, 0);
+  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
+  EXPECT_EQ(outcome.located->directions[0].count, kLength - 1);
+}
+
+/// Everything tied to everything: 741 of 780 are too many, and nearly every pivot of the constraints' own
+/// matrix is delayed, far beyond its forecast.
+TEST(RepeatedConstraints, EveryNodeTiedToEveryOther) {
+  constexpr int kNodes = 40;
+  TiedChain chain(kNodes);
+  for (int a = 1; a <= kNodes; ++a) {
+    for (int b = 1; b < a; ++b) chain.tie(a, b, 1, -1);
+  }
+  const Outcome outcome = located(chain.model);
+  constexpr int kTies = kNodes * (kNodes - 1) / 2;
+  EXPECT_EQ(outcome.located->zero, kTies - (kNodes - 1));
+  EXPECT_EQ(outcome.located->not_located, 0);
+  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
+  EXPECT_EQ(outcome.located->directions[0].count, kTies - (kNodes - 1));
+  EXPECT_EQ(outcome.located->directions[0].moving_nodes, kTies);
+}
+
+/// Rings, pairs, and a loose end beside them: each is told from the others.
+TEST(RepeatedConstraints, RingsBesidePairsAndALooseNode) {
+  TiedChain chain(400);
+  for (int k = 0; k < 80; ++k) {
+    const int a = 3 * k + 1;
+    for (const auto& [p, q] : {std::pair{a, a + 1}, std::pair{a + 1, a + 2}, std::pair{a + 2, a}})
+      chain.tie(p, q, 1, -1);
+  }
+  for (int a = 241; a < 380; a += 2) {
+    chain.tie(a, a + 1, 1, 0.5);
+    chain.tie(a, a + 1, 2, 1);
+  }
+  chain.model.place[900] = {5, 5, 0};
+  chain.model.place[901] = {6, 5, 0};
+  chain.model.add_dof(900, "ux");
+  chain.model.add_dof(901, "ux");
+  chain.model.add_link(900, 901, "ux", 1);
+  const Outcome outcome = located(chain.model);
+  EXPECT_EQ(outcome.located->zero, 151);
+  EXPECT_EQ(outcome.located->not_located, 0);
+  std::multiset<Index> counts;
+  for (const Direction& one : of_cause(outcome, Cause::kRedundantConstraint)) counts.insert(one.count);
+  EXPECT_EQ(counts, (std::multiset<Index>{70, 80})) << summary(outcome);
+  const auto loose = of_cause(outcome, Cause::kLoosePart);
+  ASSERT_EQ(loose.size(), 1U) << summary(outcome);
+  EXPECT_EQ(nodes_of(loose[0]), (std::set<std::int64_t>{900, 901}));
+}
+
+/// A ring that misses by a thousandth does not close: nothing is redundant, and nothing is named so.
+TEST(RepeatedConstraints, ARingThatDoesNotCloseIsNone) {
+  TiedChain chain;
+  chain.tie(4, 9, 1, -1);
+  chain.tie(9, 15, 1, -1);
+  chain.tie(15, 4, 1, -1.001);
+  const Outcome outcome = located(chain.model);
+  EXPECT_EQ(outcome.located->zero, 0);
+  EXPECT_TRUE(of_cause(outcome, Cause::kRedundantConstraint).empty()) << summary(outcome);
 }
 
 /// Nobody says which equations are multipliers: no diagonal, but entries.

@@ -2,6 +2,7 @@
 STANCHION_PICTURES=FOLDER keeps pictures and PDF files. Skipped, with the reason, where there is no Chromium."""
 
 import base64
+import html
 import os
 import pathlib
 import re
@@ -110,36 +111,45 @@ class ReportLookTest(unittest.TestCase):
                 found = self.faults(1280)
                 self.assertTrue(any(re.search(word, fault) for fault in found), found)
 
-    def print_page(self, name):
-        """The PDF, after marking the corners of its drawings; returns how many those are."""
+    def print_page(self, name, change):
+        """The PDF, after `change` and marking the corners of the drawings; returns how many those are."""
         self.browser.size(1280, 900, "dark")  # paper is white all the same
         self.open(name)
+        self.browser.run(change)
         marked = self.browser.run(CORNERS)
         data = self.browser.call("Page.printToPDF", preferCSSPageSize=True, printBackground=True)["data"]
         path = pathlib.Path(self.pictures or self.folder) / f"report_{name}.pdf"
         path.write_bytes(base64.b64decode(data))
         return path, marked
 
+    def faults_on_paper(self, name, change="0"):
+        path, marked = self.print_page(name, change)
+        layout = subprocess.run(["pdftotext", "-bbox", path, "-"], capture_output=True, text=True, check=True).stdout
+        sheets, found, places = layout.split("<page ")[1:], [], {}
+        for number, sheet in enumerate(sheets):
+            width = float(re.match(r'width="([\d.]+)"', sheet).group(1))
+            for left, right, word in re.findall(r'<word xMin="([\d.-]+)" yMin="[\d.-]+" xMax="([\d.-]+)" yMax="[\d.-]+">(.*?)</word>', sheet):
+                if float(left) < 0 or float(right) > width:
+                    found.append(f"{word} leaves the sheet")
+                places[word] = number
+        for k in range(marked):
+            if places.get(f"firstcorner{k}end", -1) != places.get(f"lastcorner{k}end", -2):
+                found.append(f"drawing {k} is cut")
+        first = html.unescape(" ".join(re.findall(r">(\S+)</word>", sheets[0])))
+        lead = self.browser.run("document.querySelector('.lead').textContent").split()
+        if lead[0] not in first or " ".join(lead[-2:]) not in first:
+            found.append("the verdict is not on the first sheet")
+        return found
+
     @unittest.skipUnless(shutil.which("pdftotext"), "pdftotext (poppler-utils) is not there")
     def test_paper(self):
         for name in self.pages:
             with self.subTest(name):
-                path, marked = self.print_page(name)
-                layout = subprocess.run(["pdftotext", "-bbox", path, "-"], capture_output=True, text=True, check=True).stdout
-                sheets = layout.split("<page ")[1:]
-                places = {}
-                for number, sheet in enumerate(sheets):
-                    width = float(re.match(r'width="([\d.]+)"', sheet).group(1))
-                    for left, right, word in re.findall(r'<word xMin="([\d.-]+)" yMin="[\d.-]+" xMax="([\d.-]+)" yMax="[\d.-]+">(.*?)</word>', sheet):
-                        self.assertTrue(0 <= float(left) and float(right) <= width, f"{word} leaves the sheet")
-                        places[word] = number
-                for k in range(marked):
-                    self.assertIn(f"firstcorner{k}end", places)
-                    self.assertEqual(places[f"firstcorner{k}end"], places.get(f"lastcorner{k}end"), f"drawing {k} is cut")
-                first = " ".join(re.findall(r">(\S+)</word>", sheets[0]))
-                lead = self.browser.run("document.querySelector('.lead').textContent")
-                self.assertIn(lead.split()[0], first)
-                self.assertIn(" ".join(lead.split()[-2:]).replace('"', "&quot;"), first)
+                self.assertEqual(self.faults_on_paper(name), [])
+        for change, word in (("document.querySelector('svg.chart').setAttribute('viewBox', '0 0 640 2000')", "is cut"),
+                             ("document.querySelector('header.top').style.marginBottom = '320mm'", "first sheet")):
+            with self.subTest(change):
+                self.assertTrue(any(word in fault for fault in self.faults_on_paper("sound", change)))
 
 
 if __name__ == "__main__":

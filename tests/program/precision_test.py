@@ -33,6 +33,24 @@ class PrecisionTest(ProgramTest):
         counted = self.expect(0, "count", path, "--at", "0.5", "--precision", "extended")
         self.assertEqual(counted["counts"][0]["certificate"]["precision"], "extended")
 
+    def test_delays_far_beyond_the_forecast(self):
+        # Every node tied to every other one: the ties of a complete graph on n nodes have rank n - 1 (graph theory), and
+        # n-([I B^T; B 0]) is the rank of B. Stacks sized by the forecast do not hold what is delayed.
+        nodes = 40
+        entries, row = {(i, i): 1.0 for i in range(nodes)}, nodes
+        for a in range(nodes):
+            for b in range(a):
+                entries[row, a], entries[row, b] = 1.0, -1.0
+                row += 1
+        path = self.matrix("K.mtx", row, entries)
+        (self.folder / "dofs.csv").write_text("equation,node,dof\n" + "".join(f"{k + 1},{k + 1},{'ux' if k < nodes else 'multiplier'}\n" for k in range(row)), encoding="ascii")
+        for precision in ("double", "extended"):
+            with self.subTest(precision):
+                document = self.expect(1, "check", path, "--dofs", "dofs.csv", "--precision", precision)
+                self.assertEqual(document["inertia"]["negative"], nodes - 1)
+                self.assertEqual(document["inertia"]["zero"], row - nodes - (nodes - 1))
+                self.assertEqual(document["inertia"]["positive"], nodes)
+
     def test_extended_tells_what_double_cannot(self):
         path = self.matrix("K.mtx", 8000, ring(8000))
         self.assertEqual(self.expect(0, "check", path, "--precision", "extended")["verdict"], "positive_definite")
