@@ -10,9 +10,9 @@
 namespace stanchion {
 namespace {
 
-constexpr Offset kMostSteps = 100'000'000;   ///< of the elimination: some tenths of a second
-constexpr Offset kMostEntries = 3'000'000;   ///< of the vectors of all linked constraints together
-constexpr double kNegligible = 1e-17;        ///< entry of a unit vector
+constexpr Offset kMostSteps = 100'000'000;  ///< of the elimination: some tenths of a second
+constexpr Offset kMostEntries = 3'000'000;  ///< of the vectors of all linked constraints together
+constexpr double kNegligible = 1e-17;       ///< entry of a unit vector
 
 class Dependence {
  public:
@@ -48,7 +48,8 @@ class Dependence {
     std::iota(link.begin(), link.end(), 0);
     const auto root = [&link](Index at) {
       while (link[static_cast<std::size_t>(at)] != at)
-        at = link[static_cast<std::size_t>(at)] = link[static_cast<std::size_t>(link[static_cast<std::size_t>(at)])];
+        at = link[static_cast<std::size_t>(at)] =
+            link[static_cast<std::size_t>(link[static_cast<std::size_t>(at)])];
       return at;
     };
     for (const SparseColumn& one : combinations_) {

@@ -158,8 +158,8 @@ std::string sentence_of(const CauseFacts& f) {
     case Cause::kRedundantConstraint:
       return fmt::format(
           "{}: {} can exchange force among themselves without any effect on the structure.",
-          f.follow       ? (f.count == 1 ? "One constraint follows from others together"
-                                         : fmt::format("{} constraints follow from others together", f.count))
+          f.follow       ? (f.count == 1 ? "One constraint follows from several others"
+                                         : fmt::format("{} constraints follow from several others", f.count))
           : f.count == 1 ? "One constraint repeats others"
                          : fmt::format("{} constraints repeat others", f.count),
           f.nodes > 1 ? fmt::format("the multipliers of {}, {} among them,", nodes_in_words(f), node_alone(f))

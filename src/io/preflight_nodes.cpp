@@ -122,7 +122,7 @@ class NodeInspector {
     if (far.empty()) return;
     warn("far-coordinates", std::to_string(far.size()) + (far.size() == 1 ? " node lies" : " nodes lie") +
                                 " far outside the rest: " + first_nodes(far) +
-                                ". Check their coordinates and units");
+                                ". Check coordinates and units");
   }
 
   void look_for_coincident() {

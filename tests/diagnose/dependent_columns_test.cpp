@@ -33,7 +33,8 @@ Index exact_rank(const std::vector<SparseColumn>& columns, Index rows) {
   for (const SparseColumn& column : columns) {
     a.emplace_back(static_cast<std::size_t>(rows), 0);
     for (const SparseEntry& entry : column)
-      a.back()[static_cast<std::size_t>(entry.at)] = (static_cast<Whole>(entry.value) % kPrime + kPrime) % kPrime;
+      a.back()[static_cast<std::size_t>(entry.at)] =
+          (static_cast<Whole>(entry.value) % kPrime + kPrime) % kPrime;
   }
   const auto inverse = [](Whole x) {
     Whole result = 1;
