@@ -5,13 +5,15 @@
 #include <map>
 #include <numeric>
 
+#include "diagnose/sparse_basis.hpp"
 #include "diagnose/subspace.hpp"
 
 namespace stanchion {
 namespace {
 
 constexpr Offset kMostSteps = 100'000'000;  ///< of the elimination: some tenths of a second
-constexpr Offset kMostEntries = 3'000'000;  ///< of the vectors of all linked constraints together
+constexpr Offset kMostEntries = 3'000'000;  ///< of all vectors together
+constexpr Offset kMostDense = 2'500'000;    ///< of one set while it is made orthonormal by blocks
 constexpr double kNegligible = 1e-17;       ///< entry of a unit vector
 
 class Dependence {
@@ -63,50 +65,67 @@ class Dependence {
     return sets;
   }
 
-  /// Orthonormal vectors on the multipliers of one linked set.
+  /// Orthonormal vectors on the multipliers of one linked set: by blocks while few, one by one and sparse
+  /// else.
   void add_linked(const std::vector<const SparseColumn*>& combinations) {
-    std::map<Index, double> on_row;  // multiplier -> its weight, then its place
+    std::map<Index, Index> place;  // multiplier -> its place among those of the set
     for (const SparseColumn* one : combinations) {
       for (const SparseEntry& entry : *one) {
-        const DistinctConstraint& constraint = constraints_[static_cast<std::size_t>(entry.at)];
-        for (const Index row : constraint.rows) on_row[row] = 0;
+        for (const Index row : constraint(entry).rows) place[row] = 0;
       }
     }
     std::vector<Index> rows;
-    std::map<Index, Index> place;
-    for (const auto& [row, unused] : on_row) {
-      place[row] = static_cast<Index>(rows.size());
+    for (auto& [row, at] : place) {
+      at = static_cast<Index>(rows.size());
       rows.push_back(row);
     }
-    const Offset room = entries_left_ / static_cast<Offset>(rows.size());
-    const auto many = static_cast<Index>(std::min<Offset>(room, static_cast<Offset>(combinations.size())));
-    if (many == 0) return;
-    entries_left_ -= Offset{many} * static_cast<Offset>(rows.size());
-    Columns x(static_cast<Index>(rows.size()), whole_blocks(many));
-    for (Index c = 0; c < many; ++c) {
-      for (const SparseEntry& entry : *combinations[static_cast<std::size_t>(c)]) {
-        const DistinctConstraint& constraint = constraints_[static_cast<std::size_t>(entry.at)];
-        for (std::size_t k = 0; k < constraint.rows.size(); ++k)
-          x.row(place[constraint.rows[k]])[c] += entry.value * constraint.weight[k];
+    std::vector<SparseColumn> vectors;
+    for (const SparseColumn* one : combinations) {
+      vectors.emplace_back();
+      for (const SparseEntry& entry : *one) {
+        const DistinctConstraint& whole = constraint(entry);
+        for (std::size_t k = 0; k < whole.rows.size(); ++k)
+          vectors.back().push_back({place[whole.rows[k]], entry.value * whole.weight[k]});
       }
     }
-    std::vector<Index> all(rows.size());
-    std::iota(all.begin(), all.end(), 0);
-    const Index used = orthonormalise(x, all);
-    for (Index c = 0; c < used; ++c) add(rows, x, c);
+    const auto n = static_cast<Index>(rows.size());
+    const bool few = Offset{n} * static_cast<Offset>(vectors.size()) <= std::min(kMostDense, entries_left_);
+    for (const SparseColumn& one :
+         few ? dense_orthonormal(vectors, n) : sparse_orthonormal(vectors, n, kMostSteps, entries_left_))
+      add(rows, one);
   }
 
-  void add(const std::vector<Index>& rows, const Columns& x, Index column) {
+  const DistinctConstraint& constraint(const SparseEntry& entry) const {
+    return constraints_[static_cast<std::size_t>(entry.at)];
+  }
+
+  static std::vector<SparseColumn> dense_orthonormal(const std::vector<SparseColumn>& vectors, Index rows) {
+    Columns x(rows, whole_blocks(static_cast<Index>(vectors.size())));
+    for (std::size_t c = 0; c < vectors.size(); ++c) {
+      for (const SparseEntry& entry : vectors[c]) x.row(entry.at)[c] += entry.value;
+    }
+    std::vector<Index> all(static_cast<std::size_t>(rows));
+    std::iota(all.begin(), all.end(), 0);
+    std::vector<SparseColumn> result(static_cast<std::size_t>(orthonormalise(x, all)));
+    for (std::size_t c = 0; c < result.size(); ++c) {
+      for (Index i = 0; i < rows; ++i) {
+        if (std::fabs(x.row(i)[c]) > kNegligible) result[c].push_back({i, x.row(i)[c]});
+      }
+    }
+    return result;
+  }
+
+  void add(const std::vector<Index>& rows, const SparseColumn& vector) {
     RepeatedConstraint found;
     found.in_proportion = false;
-    for (std::size_t i = 0; i < rows.size(); ++i) {
-      const double value = x.row(static_cast<Index>(i))[column];
-      if (std::fabs(value) <= kNegligible) continue;
-      found.rows.push_back(rows[i]);
-      found.entry.push_back(value);
+    for (const SparseEntry& entry : vector) {
+      found.rows.push_back(rows[static_cast<std::size_t>(entry.at)]);
+      found.entry.push_back(entry.value);
     }
     found.residual = residual(found);
-    if (found.residual <= kLocalMotionLimit) found_.push_back(std::move(found));
+    if (found.residual > kLocalMotionLimit) return;
+    entries_left_ -= static_cast<Offset>(found.rows.size());
+    found_.push_back(std::move(found));
   }
 
   double residual(const RepeatedConstraint& vector) {
@@ -148,8 +167,8 @@ std::vector<RepeatedConstraint> find_dependent_constraints(std::vector<DistinctC
 }
 
 Offset dependent_constraint_bytes(Index rows, Index zero) {
-  // The vectors, a copy while they are made orthogonal, and the result with its rows.
-  constexpr Offset kBytes = 2 * sizeof(double) + sizeof(double) + sizeof(Index);
+  // The vectors, made orthogonal, and the result with its rows.
+  constexpr Offset kBytes = 2 * sizeof(SparseEntry);
   return std::min(kMostEntries, Offset{rows} * zero) * kBytes;
 }
 

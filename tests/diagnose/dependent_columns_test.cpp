@@ -7,6 +7,8 @@
 #include <random>
 #include <vector>
 
+#include "diagnose/sparse_basis.hpp"
+
 namespace stanchion {
 namespace {
 
@@ -99,6 +101,38 @@ TEST(DependentColumns, AsManyAsTheExactRankLeaves) {
       EXPECT_LE(largest(columns, rows, one), 1e-11 * size) << round;
     }
   }
+}
+
+double dot(const SparseColumn& a, const SparseColumn& b, Index rows) {
+  std::vector<double> dense(static_cast<std::size_t>(rows), 0.0);
+  for (const SparseEntry& entry : a) dense[static_cast<std::size_t>(entry.at)] = entry.value;
+  double sum = 0;
+  for (const SparseEntry& entry : b) sum += entry.value * dense[static_cast<std::size_t>(entry.at)];
+  return sum;
+}
+
+TEST(SparseBasis, OfAStripIsOrthonormalSpansItAndStaysSparse) {
+  constexpr Index kLength = 900, kRows = 2 * kLength + 1;
+  std::vector<SparseColumn> strip;
+  for (Index k = 0; k < kLength; ++k) strip.push_back({{2 * k, 1}, {2 * k + 1, -1}, {2 * k + 2, 1}});
+  const auto basis = sparse_orthonormal(strip, kRows, kEnough, kEnough);
+  ASSERT_EQ(basis.size(), strip.size());
+  std::size_t entries = 0;
+  for (std::size_t a = 0; a < basis.size(); ++a) {
+    entries += basis[a].size();
+    for (std::size_t b = 0; b <= a; ++b)
+      ASSERT_NEAR(dot(basis[a], basis[b], kRows), a == b ? 1 : 0, 1e-14) << a << ' ' << b;
+    double in_span = 0;
+    for (const SparseColumn& q : basis) in_span += std::pow(dot(q, strip[a], kRows), 2);
+    ASSERT_NEAR(in_span, 3, 1e-12) << a;
+  }
+  EXPECT_LT(entries, basis.size() * 100);
+}
+
+TEST(SparseBasis, LeavesOutWhatDependsAndStopsWhereThereIsNoRoom) {
+  const std::vector<SparseColumn> three{{{0, 1}, {1, 1}}, {{1, 2}, {2, 1}}, {{0, 1}, {1, 3}, {2, 1}}};
+  EXPECT_EQ(sparse_orthonormal(three, 3, kEnough, kEnough).size(), 2U);
+  EXPECT_EQ(sparse_orthonormal(three, 3, kEnough, 1).size(), 1U);
 }
 
 TEST(DependentColumns, StopsWhereTheStepsEnd) {

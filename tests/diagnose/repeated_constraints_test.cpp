@@ -147,19 +147,23 @@ TEST(RepeatedConstraints, AHundredRingsAreOneEntryWithAllTheirNodes) {
   EXPECT_LE(found.residual.value_or(1), 1e-12);
 }
 
-/// All of one strip hang together: of 2 n ties over n + 2 nodes n - 1 are too many.
-TEST(RepeatedConstraints, AStripThatHangsTogether) {
-  constexpr int kLength = 300;
-  TiedChain chain(kLength + 2);
-  for (int k = 1; k <= kLength; ++k) {
+/// All of one strip hang together: of 2 n ties over n + 2 nodes n - 1 are too many. The long one's vectors
+/// are made orthonormal one by one.
+class Strip : public testing::TestWithParam<int> {};
+INSTANTIATE_TEST_SUITE_P(RepeatedConstraints, Strip, testing::Values(300, 1200));
+
+TEST_P(Strip, HangsTogether) {
+  const int length = GetParam();
+  TiedChain chain(length + 2);
+  for (int k = 1; k <= length; ++k) {
     chain.tie(k, k + 1, 1, -1);
     chain.tie(k, k + 2, 1, -1);
   }
   const Outcome outcome = located(chain.model);
-  EXPECT_EQ(outcome.located->zero, kLength - 1);
+  EXPECT_EQ(outcome.located->zero, length - 1);
   EXPECT_EQ(outcome.located->not_located, 0);
   ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
-  EXPECT_EQ(outcome.located->directions[0].count, kLength - 1);
+  EXPECT_EQ(outcome.located->directions[0].count, length - 1);
 }
 
 /// Everything tied to everything: 741 of 780 are too many, and nearly every pivot of the constraints' own

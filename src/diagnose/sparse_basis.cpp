@@ -1,0 +1,106 @@
+#include "diagnose/sparse_basis.hpp"
+
+#include <algorithm>
+#include <cmath>
+
+namespace stanchion {
+namespace {
+
+constexpr double kNegligible = 1e-17, kIndependent = 1e-11;
+
+class SparseBasis {
+ public:
+  SparseBasis(Index rows, Offset most_steps, Offset most_entries)
+      : steps_left_(most_steps),
+        entries_left_(most_entries),
+        meets_(static_cast<std::size_t>(rows)),
+        value_(static_cast<std::size_t>(rows), 0.0),
+        there_(static_cast<std::size_t>(rows), 0) {}
+
+  bool full() const { return steps_left_ <= 0 || entries_left_ <= 0; }
+
+  void take(const SparseColumn& vector) {
+    for (const SparseEntry& entry : vector) add(entry.at, entry.value);
+    const double before = length();
+    for (int pass = 0; pass < 2; ++pass) subtract_earlier();
+    const double left = length();
+    if (left > kIndependent * before && !full()) keep(left);
+    for (const Index at : places_) {
+      value_[static_cast<std::size_t>(at)] = 0;
+      there_[static_cast<std::size_t>(at)] = 0;
+    }
+    places_.clear();
+  }
+
+  std::vector<SparseColumn> done() { return std::move(basis_); }
+
+ private:
+  void add(Index at, double value) {
+    const auto i = static_cast<std::size_t>(at);
+    value_[i] += value;
+    if (there_[i]) return;
+    there_[i] = 1;
+    places_.push_back(at);
+  }
+
+  double length() const {
+    double sum = 0;
+    for (const Index at : places_) {
+      const double value = value_[static_cast<std::size_t>(at)];
+      sum += value * value;
+    }
+    return std::sqrt(sum);
+  }
+
+  void subtract_earlier() {
+    std::vector<Index> earlier;
+    for (const Index at : places_) {
+      const auto& here = meets_[static_cast<std::size_t>(at)];
+      earlier.insert(earlier.end(), here.begin(), here.end());
+    }
+    std::sort(earlier.begin(), earlier.end());
+    earlier.erase(std::unique(earlier.begin(), earlier.end()), earlier.end());
+    for (const Index one : earlier) {
+      const SparseColumn& q = basis_[static_cast<std::size_t>(one)];
+      double along = 0;
+      for (const SparseEntry& entry : q) along += entry.value * value_[static_cast<std::size_t>(entry.at)];
+      steps_left_ -= static_cast<Offset>(q.size());
+      if (along == 0) continue;
+      for (const SparseEntry& entry : q) add(entry.at, -along * entry.value);
+    }
+  }
+
+  void keep(double size) {
+    SparseColumn q;
+    std::sort(places_.begin(), places_.end());
+    for (const Index at : places_) {
+      const double value = value_[static_cast<std::size_t>(at)] / size;
+      if (std::fabs(value) <= kNegligible) continue;
+      q.push_back({at, value});
+      meets_[static_cast<std::size_t>(at)].push_back(static_cast<Index>(basis_.size()));
+    }
+    entries_left_ -= static_cast<Offset>(q.size());
+    basis_.push_back(std::move(q));
+  }
+
+  Offset steps_left_, entries_left_;
+  std::vector<std::vector<Index>> meets_;  ///< by row: the vectors that have an entry there
+  std::vector<double> value_;
+  std::vector<char> there_;
+  std::vector<Index> places_;
+  std::vector<SparseColumn> basis_;
+};
+
+}  // namespace
+
+std::vector<SparseColumn> sparse_orthonormal(const std::vector<SparseColumn>& vectors, Index rows,
+                                             Offset most_steps, Offset most_entries) {
+  SparseBasis basis(rows, most_steps, most_entries);
+  for (const SparseColumn& vector : vectors) {
+    if (basis.full()) break;
+    basis.take(vector);
+  }
+  return basis.done();
+}
+
+}  // namespace stanchion
