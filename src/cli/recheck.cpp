@@ -239,6 +239,7 @@ Result<int> RecheckCommand::run(const Call& call) {
   if (!document.ok()) return document.status();
   auto json_file = open_recheck_answer(json_, *certificate_, *document);
   if (!json_file.ok()) return json_file.status();
+  if (*json_file) (*json_file)->remove_older();
   if (Status status = find_inputs(*document, root_); !status.ok()) return status;
 
   const Question question = question_of(document->outcome);

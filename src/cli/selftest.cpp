@@ -88,6 +88,7 @@ Result<int> SelftestCommand::run(const Call&) {
     auto opened = AnswerFile::open(*json_);
     if (!opened.ok()) return opened.status();
     file = std::move(*opened);
+    file->remove_older();
   }
   const auto lines = selftest(quick_ ? SelftestLevel::kQuick : SelftestLevel::kFull);
   if (Status status = deliver(lines, file); !status.ok()) return status;

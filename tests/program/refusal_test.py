@@ -120,6 +120,15 @@ class RefusalTest(ProgramTest):
         self.assertEqual(self.run_program("check", self.stiffness, "--witness", "vector.csv").returncode, 0)
         self.assertFalse((self.folder / "vector.csv").exists())
 
+    def test_a_recheck_of_other_bytes_leaves_no_older_agreement(self):
+        self.assertEqual(self.run_program("check", self.stiffness, "--certificate", "proof.json", "--quiet").returncode, 0)
+        self.assertEqual(self.run_program("recheck", "proof.json", "--json", "agreed.json", "--quiet").returncode, 0)
+        self.assertTrue((self.folder / "agreed.json").exists())
+        with open(self.stiffness, "a", encoding="ascii") as matrix:
+            matrix.write("\n")
+        self.assertEqual(self.run_program("recheck", "proof.json", "--json", "agreed.json", "--quiet").returncode, 2)
+        self.assertFalse((self.folder / "agreed.json").exists())
+
     def test_what_could_not_be_written_certifies_nothing(self):
         run = self.run_program("check", self.stiffness, "--certificate", "/dev/full", "--html", "page.html", "--junit", "suite.xml")
         self.assertEqual(run.returncode, 4)
