@@ -210,6 +210,7 @@ class Bisection {
       }
     }
     if (!high || (range.high && range.low && !low)) return;
+    if (counter_.two_sided() && !low) return;  // values may lie below all that was counted
     const double nothing_below = counter_.kind() == CountKind::kAbove ? counter_.origin() : -INFINITY;
     const double from = low ? low->shift : nothing_below;
     found.complete = counted_range(low, *high, from, high->shift);
