@@ -378,7 +378,10 @@ class ResidualBrackets {
       auto pairs = search_->pairs_of(found.list, many);
       if (!pairs.ok()) return pairs.status();
       auto settled = settle_first(*pairs, found, many, side, wanted);
-      if (!settled.ok() || *settled) return settled;
+      if (!settled.ok()) return settled;
+      // An estimate that rounding moved out of its place makes an end too far in: there are more behind it.
+      const auto number = static_cast<Offset>(std::min(many, wanted));
+      if (*settled && *(*settled)->complete->count >= number) return settled;
       search_->look_closer();
     }
     return nothing();
