@@ -99,6 +99,20 @@ class BracketTest(ProgramTest):
             for value in document["critical"]:
                 self.assertGreaterEqual(sum(value["low"] <= factor <= value["high"] for factor in factors), value["multiplicity"])
 
+    def test_no_range_is_complete_beyond_what_was_counted(self):
+        # So badly conditioned that no count behind the values is exact: nothing is known of what lies there.
+        for method, first, below, factors in (
+                ("counts", 1, 6, [7, -1001, 100000, -10**8, -1000, -10000, -100000, -5, 9, 5, 3, -7, 5]),
+                ("residual", 3, 5, [1004, -1000, -2, 7, 10**8, -1000, -10**7, -1005, -1005, 7, 1008, -1006, -1002, 10, -10, 3])):
+            rows = len(factors)
+            path = self.matrix("W.mtx", rows, congruent([abs(factor) for factor in factors], below))
+            geometric = self.matrix("V.mtx", rows, congruent([-1 if factor > 0 else 1 for factor in factors], below))
+            document = self.bracket(3, path, "--geometric", geometric, "--first", first, "--side", "negative", "--method", method)
+            self.assertIsNone(document["complete"])
+            self.assertGreaterEqual(len(document["critical"]), 1)
+            for value in document["critical"]:
+                self.assertGreaterEqual(sum(value["low"] <= factor <= value["high"] for factor in factors), value["multiplicity"])
+
     def test_values_far_behind_the_zeros_are_seen(self):
         # Rows without stiffness have the scale of their mass; what follows their zeros is 1e17 times the first guess of a shift.
         stiffness = self.matrix("K9.mtx", 9, diagonal([0, 0, 0, 1.4e10, 1.4e10, 3e10, 4e10, 5e10, 6e10]))
