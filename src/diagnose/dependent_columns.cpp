@@ -6,41 +6,12 @@
 #include <queue>
 #include <utility>
 
+#include "diagnose/scattered.hpp"
+
 namespace stanchion {
 namespace {
 
 constexpr double kVanishes = 0x1p-40;  ///< of the largest number met on the way
-
-/// Values by place, and which places may hold one.
-class Scattered {
- public:
-  explicit Scattered(Index size)
-      : value_(static_cast<std::size_t>(size), 0.0), there_(static_cast<std::size_t>(size), 0) {}
-
-  /// True where the place was empty before.
-  bool add(Index at, double value) {
-    const auto i = static_cast<std::size_t>(at);
-    value_[i] += value;
-    if (there_[i]) return false;
-    there_[i] = 1;
-    places_.push_back(at);
-    return true;
-  }
-  double at(Index place) const { return value_[static_cast<std::size_t>(place)]; }
-  const std::vector<Index>& places() const { return places_; }
-  void clear() {
-    for (const Index place : places_) {
-      value_[static_cast<std::size_t>(place)] = 0;
-      there_[static_cast<std::size_t>(place)] = 0;
-    }
-    places_.clear();
-  }
-
- private:
-  std::vector<double> value_;
-  std::vector<char> there_;
-  std::vector<Index> places_;
-};
 
 /// Columns C = L U with L of unit pivots: C_k is the sum over p of U(p, k) L_p, and U(k, k) L_k where it does
 /// not vanish.

@@ -5,6 +5,7 @@
 #include <map>
 #include <numeric>
 
+#include "diagnose/scattered.hpp"
 #include "diagnose/sparse_basis.hpp"
 #include "diagnose/subspace.hpp"
 
@@ -14,16 +15,15 @@ namespace {
 constexpr Offset kMostSteps = 100'000'000;  ///< of the elimination: some tenths of a second
 constexpr Offset kMostEntries = 3'000'000;  ///< of all vectors together
 constexpr Offset kMostDense = 2'500'000;    ///< of one set while it is made orthonormal by blocks
-constexpr double kNegligible = 1e-17;       ///< entry of a unit vector
 
 class Dependence {
  public:
   Dependence(std::vector<DistinctConstraint> constraints, Index rows)
-      : constraints_(std::move(constraints)), image_(static_cast<std::size_t>(rows), 0.0) {}
+      : constraints_(std::move(constraints)), image_(rows) {}
 
   std::vector<RepeatedConstraint> run() {
     const std::vector<double> size = make_unit();
-    combinations_ = dependent_columns(columns_, static_cast<Index>(image_.size()), kMostSteps);
+    combinations_ = dependent_columns(columns_, image_.size(), kMostSteps);
     for (SparseColumn& one : combinations_) {
       for (SparseEntry& entry : one) entry.value /= size[static_cast<std::size_t>(entry.at)];
     }
@@ -136,24 +136,20 @@ class Dependence {
       }
     }
     // Within a constraint the entries are in proportion to its weights: their sum along those is what acts.
-    std::vector<Index> touched;
     for (std::size_t i = 0; i < vector.rows.size(); ++i) {
       const auto& [g, k] = constraint_of_.at(vector.rows[i]);
       const double along = vector.entry[i] * constraints_[g].weight[k];
-      for (const SparseEntry& entry : constraints_[g].column) {
-        image_[static_cast<std::size_t>(entry.at)] += along * entry.value;
-        touched.push_back(entry.at);
-      }
+      for (const SparseEntry& entry : constraints_[g].column) image_.add(entry.at, along * entry.value);
     }
     double most = 0;
-    for (const Index row : touched) most = std::max(most, std::fabs(image_[static_cast<std::size_t>(row)]));
-    for (const Index row : touched) image_[static_cast<std::size_t>(row)] = 0;
+    for (const Index row : image_.places()) most = std::max(most, std::fabs(image_.at(row)));
+    image_.clear();
     return most;
   }
 
   std::vector<DistinctConstraint> constraints_;
   std::vector<SparseColumn> columns_, combinations_;
-  std::vector<double> image_;
+  Scattered image_;  ///< of a vector, by row of A_s
   std::map<Index, std::pair<std::size_t, std::size_t>> constraint_of_;
   Offset entries_left_ = kMostEntries;
   std::vector<RepeatedConstraint> found_;

@@ -3,10 +3,12 @@
 #include <algorithm>
 #include <cmath>
 
+#include "diagnose/scattered.hpp"
+
 namespace stanchion {
 namespace {
 
-constexpr double kNegligible = 1e-17, kIndependent = 1e-11;
+constexpr double kIndependent = 1e-11;  ///< left of a vector without its parts along earlier ones
 
 class SparseBasis {
  public:
@@ -14,47 +16,31 @@ class SparseBasis {
       : steps_left_(most_steps),
         entries_left_(most_entries),
         meets_(static_cast<std::size_t>(rows)),
-        value_(static_cast<std::size_t>(rows), 0.0),
-        there_(static_cast<std::size_t>(rows), 0) {}
+        sum_(rows) {}
 
   bool full() const { return steps_left_ <= 0 || entries_left_ <= 0; }
 
   void take(const SparseColumn& vector) {
-    for (const SparseEntry& entry : vector) add(entry.at, entry.value);
+    for (const SparseEntry& entry : vector) sum_.add(entry.at, entry.value);
     const double before = length();
     for (int pass = 0; pass < 2; ++pass) subtract_earlier();
     const double left = length();
     if (left > kIndependent * before && !full()) keep(left);
-    for (const Index at : places_) {
-      value_[static_cast<std::size_t>(at)] = 0;
-      there_[static_cast<std::size_t>(at)] = 0;
-    }
-    places_.clear();
+    sum_.clear();
   }
 
   std::vector<SparseColumn> done() { return std::move(basis_); }
 
  private:
-  void add(Index at, double value) {
-    const auto i = static_cast<std::size_t>(at);
-    value_[i] += value;
-    if (there_[i]) return;
-    there_[i] = 1;
-    places_.push_back(at);
-  }
-
   double length() const {
     double sum = 0;
-    for (const Index at : places_) {
-      const double value = value_[static_cast<std::size_t>(at)];
-      sum += value * value;
-    }
+    for (const Index at : sum_.places()) sum += sum_.at(at) * sum_.at(at);
     return std::sqrt(sum);
   }
 
   void subtract_earlier() {
     std::vector<Index> earlier;
-    for (const Index at : places_) {
+    for (const Index at : sum_.places()) {
       const auto& here = meets_[static_cast<std::size_t>(at)];
       earlier.insert(earlier.end(), here.begin(), here.end());
     }
@@ -63,18 +49,19 @@ class SparseBasis {
     for (const Index one : earlier) {
       const SparseColumn& q = basis_[static_cast<std::size_t>(one)];
       double along = 0;
-      for (const SparseEntry& entry : q) along += entry.value * value_[static_cast<std::size_t>(entry.at)];
+      for (const SparseEntry& entry : q) along += entry.value * sum_.at(entry.at);
       steps_left_ -= static_cast<Offset>(q.size());
       if (along == 0) continue;
-      for (const SparseEntry& entry : q) add(entry.at, -along * entry.value);
+      for (const SparseEntry& entry : q) sum_.add(entry.at, -along * entry.value);
     }
   }
 
   void keep(double size) {
     SparseColumn q;
-    std::sort(places_.begin(), places_.end());
-    for (const Index at : places_) {
-      const double value = value_[static_cast<std::size_t>(at)] / size;
+    std::vector<Index> places = sum_.places();
+    std::sort(places.begin(), places.end());
+    for (const Index at : places) {
+      const double value = sum_.at(at) / size;
       if (std::fabs(value) <= kNegligible) continue;
       q.push_back({at, value});
       meets_[static_cast<std::size_t>(at)].push_back(static_cast<Index>(basis_.size()));
@@ -85,9 +72,7 @@ class SparseBasis {
 
   Offset steps_left_, entries_left_;
   std::vector<std::vector<Index>> meets_;  ///< by row: the vectors that have an entry there
-  std::vector<double> value_;
-  std::vector<char> there_;
-  std::vector<Index> places_;
+  Scattered sum_;
   std::vector<SparseColumn> basis_;
 };
 
