@@ -118,10 +118,7 @@ Status ScalarWorker<Scalar>::process(Index front, ThreadPool* team) {
   const FrontRows rows = list_rows(run_.analysis.tree, front, run_.waiting, label_, local_of_);
   const BlockLayout layout = front_layout(rows.order);
   double* storage = arena_.push(ScalarBlock<Scalar>::doubles(layout));
-  if (storage == nullptr) {
-    run_.stack_full = true;
-    return run_.memory.limit_reached();
-  }
+  if (storage == nullptr) return run_.no_room();
   if (Status booked = book_arena(); !booked.ok()) return booked;
   const ScalarBlock<Scalar> matrix{layout, storage};
   assemble(rows, matrix, team);
@@ -215,10 +212,7 @@ Status ScalarWorker<Scalar>::pack(const FrontRows& rows, const ScalarBlock<Scala
   out.order = order;
   out.delayed.assign(label_.begin() + eliminated, label_.begin() + rows.candidates);
   double* start = arena_.push(waiting_doubles(order));  // `destination` itself
-  if (start == nullptr) {
-    run_.stack_full = true;
-    return run_.memory.limit_reached();
-  }
+  if (start == nullptr) return run_.no_room();
   out.place(start, kPlanes);
   const ScalarBlock<Scalar> to{contribution_layout(order), out.values};
   sums_.assign(static_cast<std::size_t>(order), 0);

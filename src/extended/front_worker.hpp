@@ -55,6 +55,12 @@ struct ScalarRun {
   ScalarProbe probe{};
   std::atomic<bool> abandon{false};     ///< a worker stopped, broke down, failed or was cancelled
   std::atomic<bool> stack_full{false};  ///< a front found no room on a stack that was sized by the forecast
+
+  /// A front found no room on its stack: the run fails, and may be had with larger ones.
+  Status no_room() {
+    stack_full = true;
+    return memory.limit_reached();
+  }
 };
 
 template <class Scalar>

@@ -95,10 +95,7 @@ Status FrontWorker<Scalar>::process(Index front, ThreadPool* team) {
   const FrontRows rows = list_rows(run_->analysis.tree, front, run_->waiting, label_, local_of_);
   const BlockLayout layout = front_layout(rows.order);
   Scalar* storage = push(layout.size());
-  if (storage == nullptr) {
-    run_->stack_full = true;
-    return run_->memory.limit_reached();
-  }
+  if (storage == nullptr) return run_->no_room();
   if (Status booked = book_arena(); !booked.ok()) return booked;
   const BlockLowerOf<Scalar> matrix{layout, storage};
   if (Status assembled = assemble(rows, matrix, team); !assembled.ok()) return assembled;

@@ -52,6 +52,12 @@ struct FactorRun {
     if constexpr (std::is_same_v<Scalar, double>) return 1.001;
     return 1.1 / (1 - 8 * Rounding<Scalar>::kUnit * (analysis.tree.rows + 1000.0));
   }
+
+  /// A front found no room on its stack: the run fails, and may be had with larger ones.
+  Status no_room() {
+    stack_full = true;
+    return memory.limit_reached();
+  }
 };
 
 /// Serves one factorization after another: begin(), fronts, finish(). What it holds of memory it keeps for
