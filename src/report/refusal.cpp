@@ -6,6 +6,7 @@
 
 #include "report/html_frame.hpp"
 #include "report/html_parts.hpp"
+#include "report/junit.hpp"
 #include "report/markup.hpp"
 #include "report/page.hpp"
 
@@ -94,19 +95,15 @@ std::string refusal_to_html(const Refusal& refusal) {
 }
 
 std::string refusal_to_junit(const Refusal& refusal) {
-  const std::string suite = "stanchion." + refusal.command;
   const bool named = refusal.title || !refusal.inputs.empty();
   std::string text = refusal.why.message();
   if (!refusal.why.place().empty()) text += "\nwhere: " + refusal.why.place();
   if (!refusal.why.remedy().empty()) text += "\nremedy: " + refusal.why.remedy();
   text += fmt::format("\ncode: {}\nexit code: {}", refusal.why.code(), refusal.exit_code);
-  return fmt::format(
-      "<?xml version=\"1.0\" encoding=\"UTF-8\"?>\n<testsuites>\n<testsuite name=\"{}\" tests=\"1\" "
-      "failures=\"0\" errors=\"1\" skipped=\"0\" time=\"0.000\">\n<testcase classname=\"{}\" name=\"{} "
-      "answers well\" time=\"0.000\"><error message=\"{}\" type=\"{}\">{}</error></testcase>\n"
-      "</testsuite>\n</testsuites>\n",
-      escaped(named ? title_of(refusal) : suite), escaped(suite), escaped(refusal.command),
-      escaped(refusal.why.message()), escaped(refusal.why.code()), escaped(text));
+  return junit_document(refusal.command, named ? title_of(refusal) : "",
+                        {{refusal.command + " answers well", refusal.why.message(), JunitState::kError,
+                          refusal.why.code(), text}},
+                        0);
 }
 
 }  // namespace stanchion
