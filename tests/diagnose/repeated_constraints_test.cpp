@@ -52,6 +52,18 @@ double shares_of(const Direction& direction) {
   return sum;
 }
 
+/// The one entry of a model where `zero` constraints are too many and nothing else is amiss.
+Direction only_entry(const Outcome& outcome, Index zero) {
+  EXPECT_EQ(outcome.located->zero, zero);
+  EXPECT_EQ(outcome.located->not_located, 0);
+  EXPECT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
+  if (outcome.located->directions.empty()) return {};
+  const Direction& found = outcome.located->directions.front();
+  EXPECT_EQ(found.cause, Cause::kRedundantConstraint);
+  EXPECT_EQ(found.count, zero);
+  return found;
+}
+
 TEST(RepeatedConstraints, ThoseInProportionAreOneEntry) {
   TiedChain chain;
   std::set<std::int64_t> repeated;
@@ -67,12 +79,7 @@ TEST(RepeatedConstraints, ThoseInProportionAreOneEntry) {
   std::set<std::int64_t> expected;
   for (const std::int64_t node : repeated) expected.insert(renamed.at(node));
   const Outcome outcome = located(chain.model);
-  EXPECT_EQ(outcome.located->zero, 3);
-  EXPECT_EQ(outcome.located->not_located, 0);
-  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
-  const Direction& found = outcome.located->directions[0];
-  EXPECT_EQ(found.cause, Cause::kRedundantConstraint);
-  EXPECT_EQ(found.count, 3);
+  const Direction found = only_entry(outcome, 3);
   EXPECT_EQ(found.moving_nodes, 5);
   EXPECT_EQ(nodes_of(found), expected);
   EXPECT_NEAR(shares_of(found), 1, 1e-12);
@@ -88,12 +95,7 @@ TEST(RepeatedConstraints, AHundredPairsAreAllNamed) {
     chain.tie(1 + k, 2 + k, -3, -3.0 - 0.3 * k);
   }
   const Outcome outcome = located(chain.model);
-  EXPECT_EQ(outcome.located->zero, 100);
-  EXPECT_EQ(outcome.located->not_located, 0);
-  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
-  EXPECT_EQ(outcome.located->directions[0].cause, Cause::kRedundantConstraint);
-  EXPECT_EQ(outcome.located->directions[0].count, 100);
-  EXPECT_EQ(outcome.located->directions[0].moving_nodes, 200);
+  EXPECT_EQ(only_entry(outcome, 100).moving_nodes, 200);
 }
 
 /// More of one group than are taken together.
@@ -137,12 +139,7 @@ TEST(RepeatedConstraints, AHundredRingsAreOneEntryWithAllTheirNodes) {
   }
   chain.model.shuffle(3);
   const Outcome outcome = located(chain.model);
-  EXPECT_EQ(outcome.located->zero, 100);
-  EXPECT_EQ(outcome.located->not_located, 0);
-  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
-  const Direction& found = outcome.located->directions[0];
-  EXPECT_EQ(found.cause, Cause::kRedundantConstraint);
-  EXPECT_EQ(found.count, 100);
+  const Direction found = only_entry(outcome, 100);
   EXPECT_EQ(found.moving_nodes, static_cast<Index>(ties.size()));
   EXPECT_LE(found.residual.value_or(1), 1e-12);
 }
@@ -160,10 +157,7 @@ TEST_P(Strip, HangsTogether) {
     chain.tie(k, k + 2, 1, -1);
   }
   const Outcome outcome = located(chain.model);
-  EXPECT_EQ(outcome.located->zero, length - 1);
-  EXPECT_EQ(outcome.located->not_located, 0);
-  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
-  EXPECT_EQ(outcome.located->directions[0].count, length - 1);
+  only_entry(outcome, length - 1);
 }
 
 /// Everything tied to everything: 741 of 780 are too many, and nearly every pivot of the constraints' own
@@ -176,11 +170,7 @@ TEST(RepeatedConstraints, EveryNodeTiedToEveryOther) {
   }
   const Outcome outcome = located(chain.model);
   constexpr int kTies = kNodes * (kNodes - 1) / 2;
-  EXPECT_EQ(outcome.located->zero, kTies - (kNodes - 1));
-  EXPECT_EQ(outcome.located->not_located, 0);
-  ASSERT_EQ(outcome.located->directions.size(), 1U) << summary(outcome);
-  EXPECT_EQ(outcome.located->directions[0].count, kTies - (kNodes - 1));
-  EXPECT_EQ(outcome.located->directions[0].moving_nodes, kTies);
+  EXPECT_EQ(only_entry(outcome, kTies - (kNodes - 1)).moving_nodes, kTies);
 }
 
 /// Rings, pairs, and a loose end beside them: each is told from the others.

@@ -13,6 +13,7 @@ import tempfile
 import unittest
 
 import browser
+from spoiled import push_along
 
 PROGRAM = os.environ["STANCHION_PROGRAM"]
 SOURCE = pathlib.Path(os.environ["STANCHION_SOURCE"])
@@ -35,14 +36,6 @@ CORNERS = """[...document.querySelectorAll("svg.view, svg.chart")].filter((one) 
   }
   return k;
 }).length"""
-
-
-def push_along(path, pushed):
-    """The matrix with a spring at its equation 301 that pushes along instead of back."""
-    lines = path.read_text(encoding="ascii").splitlines()
-    at = next(k for k, line in enumerate(lines) if line.startswith("301 301 "))
-    lines[at] = f"301 301 {-3 * float(lines[at].split()[2])!r}"
-    pushed.write_text("\n".join(lines) + "\n", encoding="ascii")
 
 
 def make_pages(folder):

@@ -11,6 +11,7 @@ import xml.etree.ElementTree
 
 from page_outline import outline
 from program import ProgramTest, read_json
+from spoiled import push_along
 
 NUMBER = re.compile(r"\d+(?:[.,]\d+)*(?:e[+-]?\d+)?")
 
@@ -36,14 +37,6 @@ def with_one_digit_changed(lead):
 def numpy_single(text):
     """The single precision number that `text` stands for, as a reader of Float32 arrays gives it."""
     return struct.unpack("f", struct.pack("f", float(text)))[0]
-
-
-def push_along(path, pushed):
-    """Writes the matrix with a spring at its equation 301 that pushes along instead of back."""
-    lines = path.read_text(encoding="ascii").splitlines()
-    at = next(k for k, line in enumerate(lines) if line.startswith("301 301 "))
-    lines[at] = f"301 301 {-3 * float(lines[at].split()[2])!r}"
-    pushed.write_text("\n".join(lines) + "\n", encoding="ascii")
 
 
 class ReportsTest(ProgramTest):
