@@ -137,7 +137,7 @@ struct Mode {
 /// One eigenvalue, or a group that is not told apart, in an interval that certainly holds it.
 struct CriticalValue {
   double value = 0, low = 0, high = 0;
-  Index multiplicity = 1;  ///< eigenvalues in [low, high]
+  Index multiplicity = 1;  ///< eigenvalues in [low, high]: so many at least, and exactly where all are shown
   Level level = Level::kNone;
   std::string proof;  ///< "counts" or "residual"
   std::optional<double> failure_probability;

@@ -170,7 +170,13 @@ class BaseSettler {
 Result<std::optional<SpectralBase>> base_at(PencilCounter& counter, double sigma, ThreadPool& pool,
                                             Outcome& outcome) {
   using Nothing = std::optional<SpectralBase>;
-  auto base = counter.pencil().definite_base(counter.factor_of(sigma), 0, small(counter), pool, outcome);
+  // What is in use, the base that all began with as well, counts: a factorization by itself knows its own
+  // only.
+  const StructureForecast& forecast = counter.pencil().analysis().forecast;
+  const Offset room = counter.pencil().free_bytes();
+  if (forecast.peak_bytes_solve > room) return Nothing();
+  const bool prove = small(counter) && forecast.peak_bytes_solve + forecast.peak_bytes_count <= room;
+  auto base = counter.pencil().definite_base(counter.factor_of(sigma), 0, prove, pool, outcome);
   if (!base.ok()) {
     if (base.status().kind() == StatusKind::kResourceLimit) return Nothing();
     return base.status();
