@@ -12,6 +12,7 @@
 #include "cli/log_file.hpp"
 #include "cli/output_targets.hpp"
 #include "cli/progress_line.hpp"
+#include "cli/question_targets.hpp"
 #include "cli/terminal.hpp"
 #include "engine/host.hpp"
 #include "jobs/batch.hpp"
@@ -35,9 +36,11 @@ class BatchCommand : public Command {
   const char* name() const override { return "batch"; }
   const char* summary() const override { return "many requests from one file, resumable"; }
   void declare(Arguments& arguments) override;
+  void refuse(const Status& why, const Call& call) override;
   Result<int> run(const Call& call) override;
 
  private:
+  Result<int> answer(const Call& call);
   Result<Shard> shard() const;
   Result<BatchOptions> batch_options() const;
   std::string results_path(const Shard& shard) const;
@@ -48,14 +51,15 @@ class BatchCommand : public Command {
                        BatchSummary& summary);
   Result<int> merge(const std::vector<const ListedJob*>& jobs, BatchSummary& summary);
   Result<int> deliver(BatchSummary& summary);
-  Status open_summaries();
+  OutputOptions places() const;
+  Status open_summaries(const std::string& results);
 
   std::optional<std::string> jobs_, results_, shard_, memory_cap_, store_, store_size_, reports_,
       certificates_, logs_, json_, junit_, log_, log_format_;
   std::vector<std::string> merge_;
   std::optional<std::int64_t> threads_, cpu_limit_;
   bool resume_ = false, retry_ = false, quiet_ = false;
-  std::optional<AnswerFile> json_file_, junit_file_;
+  Targets targets_;
 };
 
 void BatchCommand::declare(Arguments& arguments) {
@@ -185,19 +189,36 @@ Result<std::vector<ListedJob>> BatchCommand::read_jobs(const Call& call) const {
   return read_job_list(text, *jobs_, folder, call.rules());
 }
 
-Status BatchCommand::open_summaries() {
+OutputOptions BatchCommand::places() const {
+  OutputOptions output;
+  output.json = json_;
+  output.junit = junit_;
+  output.results = results_;
+  output.log = log_;
+  return output;
+}
+
+/// Opens the summaries and removes older ones; `results` is where the results go, asked or not.
+Status BatchCommand::open_summaries(const std::string& results) {
   if (Status status = check_targets_differ(
-          {{"--results", results_}, {"--json", json_}, {"--junit", junit_}, {"--log", log_}});
+          {{"--results", results}, {"--json", json_}, {"--junit", junit_}, {"--log", log_}});
       !status.ok()) {
     return status;
   }
+  std::vector<std::string> read = merge_;
+  read.push_back(*jobs_);
   for (const auto& [option, target, file] :
-       {std::tuple{"--json", &json_, &json_file_}, std::tuple{"--junit", &junit_, &junit_file_}}) {
-    auto opened = open_target(option, *target, {*jobs_});
+       {std::tuple{"--json", &json_, &targets_.json}, std::tuple{"--junit", &junit_, &targets_.junit}}) {
+    auto opened = open_target(option, *target, read);
     if (!opened.ok()) return opened.status();
     *file = std::move(*opened);
   }
-  return check_not_read("--results", results_, {*jobs_});
+  if (Status status = check_not_read("--results", results_, {*jobs_}); !status.ok()) return status;
+  for (const auto* file : {&targets_.json, &targets_.junit}) {
+    if (*file) (*file)->remove_older();
+  }
+  targets_.opened = true;
+  return {};
 }
 
 /// Mends what an earlier run left and keeps what still holds.
@@ -224,11 +245,12 @@ Status BatchCommand::go_on(ResultFile& file, const std::vector<const ListedJob*>
 }
 
 Result<int> BatchCommand::deliver(BatchSummary& summary) {
-  if (junit_file_) {
-    if (Status status = junit_file_->commit(batch_junit(summary)); !status.ok()) return status;
+  targets_.answered = true;
+  if (targets_.junit) {
+    if (Status status = targets_.junit->commit(batch_junit(summary)); !status.ok()) return status;
   }
-  if (json_file_) {
-    if (Status status = json_file_->commit(batch_json(summary)); !status.ok()) return status;
+  if (targets_.json) {
+    if (Status status = targets_.json->commit(batch_json(summary)); !status.ok()) return status;
   }
   Status printed;
   if (json_ == "-") {
@@ -268,7 +290,7 @@ Result<int> BatchCommand::run_jobs(const std::vector<const ListedJob*>& jobs, co
     return Status::bad_usage("results-exist", "there are results already", path,
                              "go on from them with --resume, or name another file with --results");
   }
-  if (Status status = open_summaries(); !status.ok()) return status;
+  if (Status status = open_summaries(path); !status.ok()) return status;
   LogOptions logging;
   logging.path = log_;
   const auto json = wants_json_log(log_format_);
@@ -310,9 +332,9 @@ Result<int> BatchCommand::merge(const std::vector<const ListedJob*>& jobs, Batch
     return Status::bad_usage("contradiction", "a merge runs nothing", resume_ ? "--resume" : "--shard",
                              "leave it out, or leave --merge out");
   }
-  if (Status status = open_summaries(); !status.ok()) return status;
   const std::string path = results_path({});
   summary.results_path = path;
+  if (Status status = open_summaries(path); !status.ok()) return status;
   if (Status status = check_not_read("--results", path, merge_); !status.ok()) return status;
   std::unordered_map<std::string, std::pair<JobResult, std::string>> result_of;
   for (const std::string& part : merge_) {
@@ -339,7 +361,28 @@ Result<int> BatchCommand::merge(const std::vector<const ListedJob*>& jobs, Batch
   return deliver(summary);
 }
 
+/// What is named as a summary must not show an older run once this one is refused.
+void BatchCommand::refuse(const Status& why, const Call& call) {
+  if (!targets_.opened) {
+    std::vector<std::string> read = merge_;
+    if (jobs_) read.push_back(*jobs_);
+    OutputOptions output = places();
+    if (jobs_ && !results_) output.results = results_path(shard().ok() ? *shard() : Shard{});
+    open_for_refusal(output, call.arguments, read, targets_);
+  }
+  std::vector<TableRecord> inputs;
+  if (jobs_) inputs.push_back({"jobs", *jobs_, ""});
+  deliver_refusal(targets_,
+                  {name(), call.arguments, {}, {}, inputs, why, exit_code(why.kind()), targets_.answered});
+}
+
 Result<int> BatchCommand::run(const Call& call) {
+  auto code = answer(call);
+  if (!code.ok()) refuse(code.status(), call);
+  return code;
+}
+
+Result<int> BatchCommand::answer(const Call& call) {
   const auto part = shard();
   if (!part.ok()) return part.status();
   if (retry_ && !resume_) {

@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <filesystem>
+#include <fstream>
 #include <system_error>
 
 #include "cli/output_targets.hpp"
@@ -60,6 +61,17 @@ int times_named(const std::string& path, const std::vector<std::string>& words) 
   }));
 }
 
+/// Pages and JUnit documents begin with a mark, JSON documents of ours with a line of their own; matrices,
+/// tables and lists of jobs do not.
+bool may_be_an_answer(const std::string& path) {
+  std::error_code absent;
+  if (!std::filesystem::is_regular_file(path, absent)) return true;
+  std::ifstream older(path, std::ios::binary);
+  char first[2] = {'{', '\n'};  // for a file that is empty
+  older.read(first, 2);
+  return first[0] == '<' || (first[0] == '{' && first[1] == '\n');
+}
+
 void remove_older(const OutputOptions& output, Targets& targets) {
   for (const Place& place : places(output, targets)) {
     if (place.file) place.file->remove_older();
@@ -93,6 +105,9 @@ void open_for_refusal(const OutputOptions& output, const std::vector<std::string
   if (!check_places(output, targets).ok()) return;
   for (const Place& place : places(output, targets)) {
     if (!place.path || times_named(*place.path, words) > 1) continue;
+    const bool document =
+        &place.path == &output.json || &place.path == &output.html || &place.path == &output.junit;
+    if (document && !may_be_an_answer(*place.path)) continue;
     auto opened = open_target(place.option, place.path, read);
     if (opened.ok()) place.file = std::move(*opened);
   }

@@ -34,7 +34,8 @@ struct Targets {
 Status open_targets(const OutputOptions& output, const Request& request, Targets& targets);
 
 /// The same for a question that was refused before its files were known for certain: what can be opened is,
-/// unless it is among `read`, or `words` (the command line) name it twice and so may mean it to be read.
+/// unless it is among `read`, or `words` (the command line) name it twice and so may mean it to be read, or
+/// what stands there is no document like those that are to be written.
 void open_for_refusal(const OutputOptions& output, const std::vector<std::string>& words,
                       const std::vector<std::string>& read, Targets& targets);
 

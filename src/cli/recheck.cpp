@@ -11,6 +11,7 @@
 #include "cli/interrupt.hpp"
 #include "cli/other_library.hpp"
 #include "cli/progress_line.hpp"
+#include "cli/question_targets.hpp"
 #include "cli/request_options.hpp"
 #include "cli/terminal.hpp"
 #include "engine/library_recheck.hpp"
@@ -30,6 +31,7 @@ class RecheckCommand : public Command {
   const char* name() const override { return "recheck"; }
   const char* summary() const override { return "repeat the claim of a certificate by another path"; }
   void declare(Arguments& arguments) override;
+  void refuse(const Status& why, const Call& call) override;
   Result<int> run(const Call& call) override;
 
  private:
@@ -232,11 +234,22 @@ ExitCode code_of(Agreement agreement) {
   return kExitUnresolved;
 }
 
+/// Without a certificate to compare with, an older comparison must not stay.
+void RecheckCommand::refuse(const Status&, const Call& call) {
+  OutputOptions output;
+  output.json = json_;
+  Targets targets;
+  open_for_refusal(output, call.arguments, {certificate_.value_or("")}, targets);
+}
+
 Result<int> RecheckCommand::run(const Call& call) {
   const auto bytes = MappedFile::open(*certificate_);
-  if (!bytes.ok()) return bytes.status();
-  auto document = read_certificate(bytes->bytes(), *certificate_);
-  if (!document.ok()) return document.status();
+  auto document = bytes.ok() ? read_certificate(bytes->bytes(), *certificate_)
+                             : Result<CertificateDocument>(bytes.status());
+  if (!document.ok()) {
+    refuse(document.status(), call);
+    return document.status();
+  }
   auto json_file = open_recheck_answer(json_, *certificate_, *document);
   if (!json_file.ok()) return json_file.status();
   if (*json_file) (*json_file)->remove_older();

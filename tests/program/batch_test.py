@@ -147,6 +147,39 @@ class BatchTest(ProgramTest):
         self.expect_failure(2, "empty-file", "batch", "jobs.jsonl")
         self.expect_failure(2, "file-not-found", "batch", "none.jsonl")
 
+    def test_a_refused_batch_leaves_no_older_summary(self):
+        """Neither may show an earlier run: the JSON is gone, the JUnit document says why there is no answer."""
+        places = ("--json", "summary.json", "--junit", "summary.xml")
+        self.write_jobs([self.job("a")])
+        (self.folder / "bad.jsonl").write_text("{\n", encoding="ascii")
+        refused = {"bad-json": ("bad.jsonl",), "file-not-found": ("none.jsonl",), "results-exist": ("jobs.jsonl",),
+                   "bad-shard": ("jobs.jsonl", "--resume", "--shard", "0/3"), "bad-size": ("jobs.jsonl", "--resume", "--memory-cap", "much"),
+                   "unknown-argument": ("jobs.jsonl", "--resume", "--unknown"),
+                   "file-not-found ": ("jobs.jsonl", "--merge", "none.jsonl", "--results", "x.jsonl")}
+        for code, arguments in refused.items():
+            with self.subTest(code):
+                self.batch(0, "--resume", *places[2:])
+                self.assertIn('name="a"', (self.folder / "summary.xml").read_text())
+                run = self.run_program("batch", *arguments, *places)
+                self.assertEqual((run.returncode, run.stdout), (2, ""))
+                self.assertIn(code.strip(), run.stderr)
+                self.assertFalse((self.folder / "summary.json").exists())
+                suite = xml.etree.ElementTree.parse(self.folder / "summary.xml").getroot().find("testsuite")
+                self.assertEqual((suite.get("errors"), suite.get("tests")), ("1", "1"))
+                self.assertIn(code.strip(), suite.find("testcase/error").text)
+
+    def test_a_refused_batch_destroys_nothing_that_is_read(self):
+        self.write_jobs([self.job("a")])
+        self.batch(0)
+        (self.folder / "bad.jsonl").write_text("{\n", encoding="ascii")
+        before = {path: (self.folder / path).read_bytes() for path in ("bad.jsonl", "K.mtx", "jobs.jsonl", "jobs.results.jsonl")}
+        for place in before:
+            for arguments in (("bad.jsonl", "--json"), ("bad.jsonl", "--merge", "jobs.results.jsonl", "--junit")):
+                with self.subTest(place, arguments=arguments):
+                    self.assertEqual(self.run_program("batch", *arguments, place).returncode, 2)
+        self.assertEqual(self.run_program("batch", "jobs.jsonl", "--resume", "--json", "jobs.results.jsonl").returncode, 2)
+        self.assertEqual({path: (self.folder / path).read_bytes() for path in before}, before)
+
     def test_resume_goes_by_contents(self):
         self.write_jobs(self.counts(3) + [self.job("free", stiffness="free.mtx")])
         self.batch(1)

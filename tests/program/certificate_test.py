@@ -133,6 +133,24 @@ class AgreedTest(CertificateTest):
         self.tamper(lambda document: document["claims"][0]["constrained"].update(rank=0))
         self.assertEqual(self.recheck(1)["result"], "contradicted")
 
+    def test_an_unreadable_certificate_leaves_no_older_agreement(self):
+        self.certify(0, "check", self.matrix("K.mtx", 5, chain(5)))
+        matrix = self.folder / "K.mtx"
+        whole, before = (self.folder / "claim.json").read_bytes(), matrix.read_bytes()
+        for name, change in (("cut", lambda file: file.write_bytes(whole[:100])), ("gone", lambda file: file.unlink())):
+            with self.subTest(name):
+                (self.folder / "claim.json").write_bytes(whole)
+                self.recheck(0)
+                change(self.folder / "claim.json")
+                self.assertEqual(self.run_program("recheck", "claim.json", "--json", "recheck.json").returncode, 2)
+                self.assertFalse((self.folder / "recheck.json").exists())
+                self.run_program("recheck", "claim.json", "--json", "K.mtx")
+                self.assertEqual(matrix.read_bytes(), before, "an input that the certificate might name")
+        (self.folder / "claim.json").write_bytes(whole)
+        self.recheck(0)
+        self.assertEqual(self.run_program("recheck", "claim.json", "--json", "claim.json", "--bad").returncode, 2)
+        self.assertEqual((self.folder / "claim.json").read_bytes(), whole)
+
     def test_from_another_folder(self):
         self.certify(0, "check", self.matrix("K.mtx", 5, chain(5)))
         elsewhere = self.folder / "elsewhere"
