@@ -6,6 +6,7 @@
 #include "diagnose/diagnosis.hpp"
 #include "engine/host.hpp"
 #include "engine/mass_totals.hpp"
+#include "model/byte_size.hpp"
 
 namespace stanchion {
 namespace {
@@ -31,8 +32,7 @@ Status forecast_locating(const PreparedPencil& pencil, const Inertia& inertia, c
   if (needed <= pencil.free_bytes()) return {};
   return Status::resource_limit("memory-cap",
                                 "the vectors of so many zero and negative directions are forecast to take " +
-                                    std::to_string(needed >> 20) +
-                                    " MiB beside what is in use, more than there is",
+                                    size_needed(needed) + " beside what is in use, more than there is",
                                 outcome.inputs.empty() ? "" : outcome.inputs.front().path,
                                 "raise --memory-cap, use a larger machine, or ask for fewer with --most");
 }

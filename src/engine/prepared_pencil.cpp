@@ -12,6 +12,7 @@
 #include "engine/host.hpp"
 #include "extended/factorize.hpp"
 #include "jobs/analysis_store.hpp"
+#include "model/byte_size.hpp"
 #include "model/not_checked.hpp"
 #include "order/weak_diagonal.hpp"
 #include "sparse/product.hpp"
@@ -68,10 +69,6 @@ constexpr Offset kEntriesOfVolumes = 30;
 /// A job of some seconds: the arithmetic is tried before it, for some tens of milliseconds.
 constexpr double kLongJobFlops = 5e10;
 
-std::string mebibytes(Offset bytes) {
-  return std::to_string((bytes + (1 << 20) - 1) >> 20) + " MiB";
-}
-
 bool same_pattern(const SymmetricMatrix& pattern, const SharedAnalysis& shared) {
   return pattern.column_start.size() == shared.column_start.size() &&
          pattern.row.size() == shared.row.size() &&
@@ -107,8 +104,8 @@ Status check_cap(const Request& request, Offset needed) {
   if (!request.memory_cap_bytes || needed <= *request.memory_cap_bytes) return {};
   return Status::resource_limit(
       "memory-cap",
-      "the run is forecast to need " + mebibytes(needed) + ", more than the cap of " +
-          mebibytes(*request.memory_cap_bytes),
+      "the run is forecast to need " + size_needed(needed) + ", more than the cap of " +
+          size_allowed(*request.memory_cap_bytes),
       request.input.stiffness,
       "raise --memory-cap, use fewer --threads, or give --dofs for a better ordering");
 }
@@ -246,7 +243,7 @@ Offset PreparedPencil::bytes_for_factor() const {
 Status PreparedPencil::cannot_keep_factor(Offset needed, const Outcome& outcome) const {
   return Status::resource_limit("memory-cap",
                                 "keeping the factor, which locating needs, is forecast to take " +
-                                    mebibytes(needed) + " beside what is in use, more than there is",
+                                    size_needed(needed) + " beside what is in use, more than there is",
                                 outcome.inputs.empty() ? "" : outcome.inputs.front().path,
                                 "raise --memory-cap, use a larger machine, or ask check without --locate");
 }

@@ -8,6 +8,7 @@
 #include "io/number.hpp"
 #include "io/place.hpp"
 #include "io/shortest.hpp"
+#include "model/byte_size.hpp"
 
 namespace stanchion {
 namespace {
@@ -232,9 +233,9 @@ Status check_memory(Offset rows, Offset entries, Offset most_bytes, const std::s
   if (bytes <= static_cast<double>(most_bytes)) return {};
   return Status::resource_limit(
       "memory-limit",
-      "reading " + std::to_string(rows) + " rows and " + std::to_string(entries) + " entries needs " +
-          std::to_string(static_cast<Offset>(bytes / (1 << 20)) + 1) + " MiB, more than the " +
-          std::to_string(most_bytes >> 20) + " MiB allowed",
+      "reading " + grouped(rows) + " rows and " + grouped(entries) + " entries needs " +
+          size_needed(static_cast<Offset>(std::min(bytes, 0x1p62))) + ", more than the " +
+          size_allowed(most_bytes) + " allowed",
       path, "check the size the file announces, raise --memory-cap, or use a machine with more memory");
 }
 

@@ -1,4 +1,5 @@
 #include "io/inflate.hpp"
+#include "model/byte_size.hpp"
 
 #include <zlib.h>
 
@@ -53,8 +54,8 @@ Status out_of_memory(const std::string& path) {
 Status too_large(Offset most_bytes, const std::string& path) {
   return Status::resource_limit(
       "memory-limit",
-      "decompressed, the file needs more than the " + std::to_string(most_bytes >> 20) + " MiB it may use",
-      path, "decompress it to a plain file first, or raise --memory-cap");
+      "decompressed, the file needs more than the " + size_allowed(most_bytes) + " it may use", path,
+      "decompress it to a plain file first, or raise --memory-cap");
 }
 
 /// Doubles `text` within `most_bytes`; false when it is at the limit already.

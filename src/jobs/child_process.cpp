@@ -18,6 +18,7 @@
 #include "base/file_handle.hpp"
 #include "jobs/progress_pipe.hpp"
 #include "jobs/strict_json.hpp"
+#include "model/byte_size.hpp"
 #include "model/exit_code.hpp"
 
 namespace stanchion {
@@ -143,10 +144,6 @@ bool is_crash(int number) {
     if (number == crash) return true;
   }
   return false;
-}
-
-std::string mebibytes(Offset bytes) {
-  return fmt::format("{} MiB", (bytes + kMebi - 1) / kMebi);
 }
 
 }  // namespace
@@ -307,7 +304,7 @@ ChildEnd ChildProcess::end_of(int status) {
     if (failure_) end.reason = failure_->message;
     if (failure_ && failure_->code == "out-of-memory" && memory_bytes_) {
       end.kind = ChildEndKind::kMemory;
-      end.reason = "it needed more memory than its limit of " + mebibytes(*memory_bytes_);
+      end.reason = "it needed more memory than its limit of " + size_allowed(*memory_bytes_);
     } else if (end.exit_code == kExitInterrupted) {
       end.kind = stopping_ ? ChildEndKind::kStopped : ChildEndKind::kKilled;
       end.reason = stopping_ ? "it was stopped on request" : "somebody asked it to stop";

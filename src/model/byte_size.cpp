@@ -21,6 +21,12 @@ std::optional<double> unit_factor(std::string unit) {
   return std::exp2(10 * (static_cast<double>(power) + 1));
 }
 
+std::string whole_units(Offset bytes, bool up) {
+  const int shift = bytes >= 1 << 20 ? 20 : bytes >= 1 << 10 ? 10 : 0;
+  const Offset units = (bytes >> shift) + (up && (bytes & ((Offset{1} << shift) - 1)) != 0 ? 1 : 0);
+  return fmt::format("{} {}", units, shift == 20 ? "MiB" : shift == 10 ? "KiB" : "B");
+}
+
 }  // namespace
 
 Result<Offset> parse_byte_size(std::string_view text) {
@@ -35,6 +41,14 @@ Result<Offset> parse_byte_size(std::string_view text) {
   const double bytes = std::floor(amount * *unit);
   if (!(bytes >= 1 && bytes < 0x1p62)) return failure;
   return static_cast<Offset>(bytes);
+}
+
+std::string size_needed(Offset bytes) {
+  return whole_units(bytes, true);
+}
+
+std::string size_allowed(Offset bytes) {
+  return whole_units(bytes, false);
 }
 
 }  // namespace stanchion

@@ -10,6 +10,7 @@
 
 #include "base/digest.hpp"
 #include "jobs/strict_json.hpp"
+#include "model/byte_size.hpp"
 #include "service/api.hpp"
 #include "service/api_parameters.hpp"
 #include "service/problem.hpp"
@@ -108,8 +109,8 @@ std::optional<JobProblem> Api::settle_inputs(JobRequest& request, JobRecord& job
   const Offset least = std::max(cap->value_or(0), least_memory(open->bytes(), open->all_plain()));
   if (least > parts_.options.share.memory_bytes) {
     return JobProblem{413, "memory-limit",
-                      fmt::format("it takes {} MiB of memory, and all jobs together may use {} MiB",
-                                  least >> 20, parts_.options.share.memory_bytes >> 20),
+                      fmt::format("it takes {} of memory, and all jobs together may use {}",
+                                  size_needed(least), size_allowed(parts_.options.share.memory_bytes)),
                       "", "start the service with a larger --memory-cap, on a larger machine"};
   }
   return std::nullopt;

@@ -1,4 +1,5 @@
 #include "service/job_runner.hpp"
+#include "model/byte_size.hpp"
 
 #include <fmt/format.h>
 #include <poll.h>
@@ -203,8 +204,8 @@ std::optional<JobRunner::Prepared> JobRunner::prepare(Waiting waiting) {
     if (!prepared.waiting.needs) {
       fail(prepared.active.job,
            {507, "memory-limit",
-            fmt::format("it needs {} MiB of memory, and all jobs together may use {} MiB",
-                        waiting.forecast->bytes_count >> 20, parts_.share.memory_bytes >> 20),
+            fmt::format("it needs {} of memory, and all jobs together may use {}",
+                        size_needed(waiting.forecast->bytes_count), size_allowed(parts_.share.memory_bytes)),
             "", "start the service with a larger --memory-cap, on a larger machine"},
            false);
       return std::nullopt;
@@ -310,9 +311,9 @@ void JobRunner::start(std::vector<Prepared> jobs) {
 
 void JobRunner::log_start(const Active& active) const {
   parts_.log({active.forecasting ? "forecast-started" : "job-started",
-              fmt::format("{} started, process {}, attempt {}, {} MiB, {} threads, {} s of processor time",
+              fmt::format("{} started, process {}, attempt {}, {}, {} threads, {} s of processor time",
                           active.forecasting ? "forecast" : active.job.command, active.child->pid(),
-                          active.job.attempts, active.needs.memory_bytes >> 20, active.needs.threads,
+                          active.job.attempts, size_allowed(active.needs.memory_bytes), active.needs.threads,
                           active.needs.cpu_seconds),
               active.job.id});
 }

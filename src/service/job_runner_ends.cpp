@@ -5,6 +5,7 @@
 #include <fstream>
 #include <nlohmann/json.hpp>
 
+#include "model/byte_size.hpp"
 #include "service/job_runner.hpp"
 
 namespace stanchion::service {
@@ -100,7 +101,7 @@ bool JobRunner::try_again(const Active& active, const ChildEnd& end) {
   waiting_.push_front(again);
   job.state = JobState::kQueued;
   job.started_ms.reset();
-  parts_.log({"job-repeated", fmt::format("{}; once more with {} MiB", end.reason, *memory >> 20), job.id,
+  parts_.log({"job-repeated", fmt::format("{}; once more with {}", end.reason, size_allowed(*memory)), job.id,
               LogLevel::kWarning});
   parts_.feed.publish("job", job.id, job_to_json(job, {}, false).dump());
   return true;

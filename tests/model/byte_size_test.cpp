@@ -26,5 +26,15 @@ TEST(ByteSize, RefusesWhatIsNoPositiveAmount) {
   }
 }
 
+TEST(ByteSize, InWordsNeverSaysThatALimitSuffices) {
+  EXPECT_EQ(size_needed(1), "1 B");
+  EXPECT_EQ(size_needed(1025), "2 KiB");
+  EXPECT_EQ(size_needed((1 << 20) + 1), "2 MiB");
+  EXPECT_EQ(size_allowed(1025), "1 KiB");
+  EXPECT_EQ(size_allowed((1 << 20) - 1), "1023 KiB");
+  EXPECT_EQ(size_allowed(Offset{8} << 30), "8192 MiB");
+  EXPECT_EQ(size_needed(Offset{1} << 62), "4398046511104 MiB");
+}
+
 }  // namespace
 }  // namespace stanchion

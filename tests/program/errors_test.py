@@ -101,7 +101,9 @@ class LimitTest(ProgramTest):
     def test_memory_cap_is_refused_with_the_figure(self):
         path = self.matrix("K.mtx", 3000, chain(3000))
         text = self.expect_failure(4, r"[a-z-]+", "check", path, "--memory-cap", "1k")
-        self.assertTrue(re.search(r"\d", text.split("[")[0]), text)
+        need, unit, cap, cap_unit = re.search(r"(\d+) (KiB|MiB)\D* (\d+) (KiB|MiB)", text).groups()
+        self.assertEqual((cap, cap_unit), ("1", "KiB"), text)
+        self.assertGreater((unit, int(need)), (cap_unit, int(cap)))
 
     def test_a_sufficient_cap_changes_nothing(self):
         self.expect(0, "check", self.matrix("K.mtx", 3000, chain(3000)), "--memory-cap", "2G")
