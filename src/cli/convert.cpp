@@ -5,7 +5,7 @@
 #include "cli/command.hpp"
 #include "cli/request_options.hpp"
 #include "cli/terminal.hpp"
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/page.hpp"
 #include "report/text_sections.hpp"
 

@@ -6,7 +6,7 @@
 #include <algorithm>
 #include <cstdio>
 
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion::cli {
 namespace {

@@ -9,7 +9,7 @@
 #include "cli/terminal.hpp"
 #include "io/output_file.hpp"
 #include "io/write_matrix.hpp"
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/page.hpp"
 #include "specimen/specimen_text.hpp"
 

@@ -11,6 +11,7 @@
 #include "base/ranges.hpp"
 #include "diagnose/held_motions.hpp"
 #include "diagnose/shares.hpp"
+#include "model/numbers.hpp"
 #include "numeric/block_columns.hpp"
 
 namespace stanchion {
@@ -87,26 +88,27 @@ std::string note_of(const PartsJudged& parts, std::size_t held) {
     add(fmt::format(
         "{} at one equation that it moves: along a zero direction no digit is left, and the figures are "
         "those of the structure so held.",
-        held == 1 ? "The zero direction is held for this,"
-                  : fmt::format("{} zero directions are held for this, each", held)));
+        held == 1
+            ? "The zero direction is held for this,"
+            : fmt::format("{} zero directions are held for this, each", grouped(static_cast<Offset>(held)))));
   }
   if (parts.negative > 0) {
     add(fmt::format(
         "{} equations have no figure: their parts have negative directions, and the measure has a "
         "meaning for a definite matrix only. Clear those causes and ask again.",
-        parts.negative));
+        grouped(parts.negative)));
   }
   if (parts.open > 0) {
     add(fmt::format(
         "{} equations have no figure: their parts have directions that are not told apart from zero.",
-        parts.open));
+        grouped(parts.open)));
   }
   if (parts.constrained > 0) {
     add(fmt::format(
         "{} equations have no figure: multipliers make the matrix of their parts indefinite, and the "
         "measure has a meaning for a definite one only. Eliminating the constraints from the model "
         "gives the figures.",
-        parts.constrained));
+        grouped(parts.constrained)));
   }
   return note;
 }

@@ -6,6 +6,7 @@
 #include "diagnose/naming.hpp"
 #include "diagnose/purify.hpp"
 #include "diagnose/shares.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion {
 namespace {
@@ -167,7 +168,9 @@ class BundleNamer {
     for (std::size_t k = 0; k < shown; ++k) {
       text += (k == 0 ? "" : k + 1 == found.size() ? " and " : ", ") + std::to_string(found[k]);
     }
-    return shown < found.size() ? text + " and " + std::to_string(found.size() - shown) + " more" : text;
+    return shown < found.size()
+               ? text + " and " + grouped(static_cast<Offset>(found.size() - shown)) + " more"
+               : text;
   }
 
   /// Most of what a moving node touches stays or moves the other way: no body of its own, but a pattern.

@@ -11,6 +11,7 @@
 #include "diagnose/rigid_motion.hpp"
 #include "diagnose/shares.hpp"
 #include "diagnose/subspace.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion {
 namespace {
@@ -93,7 +94,7 @@ class NegativeNamer {
         "{} no stiffness of {} own and {} on others, as the multipliers of constraints do{}; "
         "multipliers bring a negative direction each that is none of the structure. No cause is named before "
         "it is known which equations are multipliers.",
-        count == 1 ? place_of(direction) + " has" : fmt::format("{} equations have", count),
+        count == 1 ? place_of(direction) + " has" : counted(count, "equation") + " have",
         count == 1 ? "its" : "their", count == 1 ? "acts" : "act",
         count == 1 ? "" : ", " + place_of(direction) + " among them");
     e_.add(std::move(direction), std::move(facts));

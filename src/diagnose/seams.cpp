@@ -4,6 +4,7 @@
 
 #include "io/coincident.hpp"
 #include "io/joined_pairs.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion {
 
@@ -22,7 +23,8 @@ std::string Seams::in_words(const Structure& s, const std::vector<Index>& nodes)
       ++more;
     }
   }
-  if (more > 0) text += " (and " + std::to_string(more) + " more such pair" + (more == 1 ? "" : "s") + ")";
+  if (more > 0)
+    text += " (and " + grouped(static_cast<Offset>(more)) + " more such pair" + (more == 1 ? "" : "s") + ")";
   return text;
 }
 

@@ -1,4 +1,5 @@
 #include "diagnose/words.hpp"
+#include "model/numbers.hpp"
 
 #include <fmt/format.h>
 
@@ -18,7 +19,7 @@ std::string listed(const std::vector<std::string>& items) {
 /// Without a dof map every equation stands for itself.
 std::string nodes_in_words(const CauseFacts& f) {
   const char* noun = f.named ? "node" : "equation";
-  return f.nodes == 1 ? fmt::format("one {}", noun) : fmt::format("{} {}s", f.nodes, noun);
+  return f.nodes == 1 ? fmt::format("one {}", noun) : counted(f.nodes, noun);
 }
 
 /// "node 12", without its dof.
@@ -34,12 +35,12 @@ std::string loose_part(const CauseFacts& f) {
   const std::string free =
       f.motions.empty()
           ? (f.count == 1 ? std::string("it can move freely in one way")
-                          : fmt::format("it can move freely in {} independent ways", f.count))
+                          : fmt::format("it can move freely in {} independent ways", grouped(f.count)))
           : fmt::format("it can move freely as one rigid body: {}{}", listed(f.motions),
                         static_cast<Index>(f.motions.size()) < f.count
                             ? fmt::format(" and {} more, which are turns or cannot be named without "
                                           "coordinates",
-                                          f.count - static_cast<Index>(f.motions.size()))
+                                          grouped(f.count - static_cast<Index>(f.motions.size())))
                             : "");
   std::string text;
   if (f.whole_part && f.only_part) {
@@ -68,7 +69,7 @@ std::string mechanism(const CauseFacts& f) {
     if (!f.hangs.empty()) text += fmt::format(" It hangs on the rest at {}.", f.hangs);
   } else {
     const std::string meets =
-        f.count == 1 ? "a motion meets" : fmt::format("{} independent motions meet", f.count);
+        f.count == 1 ? "a motion meets" : fmt::format("{} independent motions meet", grouped(f.count));
     text = f.chain ? fmt::format(
                          "{}: {} no resistance, about as many as there are joints: a pinned chain, or bars "
                          "that form no triangles.",
@@ -106,7 +107,7 @@ std::string sentence_of(const CauseFacts& f) {
             "pinned "
             "chain): {} without any resistance.",
             f.nodes == 1 ? "" : nodes_in_words(f) + ", among them ", f.place, f.nodes == 1 ? "node" : "nodes",
-            f.count == 1 ? "one direction" : fmt::format("{} directions", f.count));
+            f.count == 1 ? "one direction" : counted(f.count, "direction"));
       }
       return f.count == 1
                  ? fmt::format("{}: the equation has no stiffness at all; nothing is attached to this dof.",
@@ -114,13 +115,14 @@ std::string sentence_of(const CauseFacts& f) {
                  : fmt::format(
                        "{} equations{}, {} among them, have no stiffness at all: nothing is attached to "
                        "these dofs.",
-                       f.count, f.named ? fmt::format(" ({}) at {}", f.dof, nodes_in_words(f)) : "", f.place);
+                       grouped(f.count), f.named ? fmt::format(" ({}) at {}", f.dof, nodes_in_words(f)) : "",
+                       f.place);
     case Cause::kMissingRotation:
       return fmt::format(
           "{}: nothing resists a rotation of the node itself, {} in all; the elements there have no "
           "stiffness about that axis (no drilling stiffness, or bars only). One cause, however many nodes.",
           f.nodes == 1 ? f.place : fmt::format("{}, {} among them", nodes_in_words(f), f.place),
-          f.count == 1 ? "one direction" : fmt::format("{} directions", f.count));
+          f.count == 1 ? "one direction" : counted(f.count, "direction"));
     case Cause::kNegativeSpring:
       if (!f.other_place.empty()) {
         return fmt::format(
@@ -158,10 +160,11 @@ std::string sentence_of(const CauseFacts& f) {
     case Cause::kRedundantConstraint:
       return fmt::format(
           "{}: {} can exchange force among themselves without any effect on the structure.",
-          f.follow       ? (f.count == 1 ? "One constraint follows from several others"
-                                         : fmt::format("{} constraints follow from several others", f.count))
+          f.follow
+              ? (f.count == 1 ? "One constraint follows from several others"
+                              : fmt::format("{} constraints follow from several others", grouped(f.count)))
           : f.count == 1 ? "One constraint repeats others"
-                         : fmt::format("{} constraints repeat others", f.count),
+                         : fmt::format("{} constraints repeat others", grouped(f.count)),
           f.nodes > 1 ? fmt::format("the multipliers of {}, {} among them,", nodes_in_words(f), node_alone(f))
                       : "the multipliers of " + node_alone(f));
     case Cause::kNearMechanism:
@@ -177,7 +180,7 @@ std::string sentence_of(const CauseFacts& f) {
       return fmt::format(
           "{}: this coupling is so stiff that about {:.0f} of 16 decimal digits of what its neighbours feel "
           "are lost{}.",
-          f.place, f.digits, f.count == 1 ? "" : fmt::format(" ({} such couplings)", f.count));
+          f.place, f.digits, f.count == 1 ? "" : fmt::format(" ({} such couplings)", grouped(f.count)));
     case Cause::kUnresolved:
       break;
   }

@@ -9,14 +9,14 @@
 #include "engine/host_rates.hpp"
 #include "engine/prepared_pencil.hpp"
 #include "extended/factorize.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion {
 namespace {
 
 /// "2 factorizations of 0.21 s each and the relative test".
 std::string in_words(Index factorizations, double seconds_each, bool relative) {
-  const std::string each =
-      seconds_each < 0.001 ? std::string("less than 1 ms") : fmt::format("{:.2g} s", seconds_each);
+  const std::string each = duration_in_sentence(seconds_each);
   std::string text = factorizations == 1 ? "one factorization of " + each
                                          : fmt::format("{} factorizations of {} each", factorizations, each);
   return relative ? text + " and the relative test" : text;

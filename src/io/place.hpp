@@ -3,6 +3,7 @@
 
 #include <string>
 
+#include "model/numbers.hpp"
 #include "stanchion/types.hpp"
 
 namespace stanchion {
@@ -19,9 +20,9 @@ inline std::string at_entry(const std::string& path, Offset row, Offset column) 
   return at_row(path, row) + ", column " + std::to_string(column + 1);
 }
 
-/// "1 entry", "7 entries".
+/// "1 entry", "7,000 entries".
 inline std::string counted(Offset count, const char* one, const char* many) {
-  return std::to_string(count) + " " + (count == 1 ? one : many);
+  return grouped(count) + " " + (count == 1 ? one : many);
 }
 
 }  // namespace stanchion

@@ -8,6 +8,7 @@
 #include "io/connected_parts.hpp"
 #include "io/place.hpp"
 #include "io/shortest.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion {
 namespace {
@@ -125,7 +126,7 @@ class Inspector {
     std::string text;
     for (const Index row : finding.first) text += (text.empty() ? "" : "; ") + name(row);
     const Offset rest = finding.count - static_cast<Offset>(finding.first.size());
-    if (rest > 0) text += "; and " + std::to_string(rest) + " more";
+    if (rest > 0) text += "; and " + grouped(rest) + " more";
     return text;
   }
 
@@ -202,8 +203,8 @@ class Inspector {
       return;
     result_.warnings.push_back(
         {"sign-of-stiffness",
-         "more diagonal entries are negative (" + std::to_string(facts.negative_diagonals) +
-             ") than positive (" + std::to_string(facts.positive_diagonals) +
+         "more diagonal entries are negative (" + grouped(facts.negative_diagonals) + ") than positive (" +
+             grouped(facts.positive_diagonals) +
              "). Written with the other sign, or a geometric stiffness in place of K? Check which "
              "file was given, and its sign",
          subject_.path});
@@ -232,16 +233,15 @@ class Inspector {
     report_units(parts);
     std::string text;
     for (std::size_t i = 0; i < parts.first_rows.size(); ++i) {
-      text += (i == 0 ? "" : "; ") + std::to_string(parts.sizes[i]) +
+      text += (i == 0 ? "" : "; ") + grouped(parts.sizes[i]) +
               (parts.sizes[i] == 1 ? " row from " : " rows from ") + name(parts.first_rows[i]);
     }
     const Index rest = parts.count - static_cast<Index>(parts.first_rows.size());
-    if (rest > 0) text += "; and " + std::to_string(rest) + " more";
+    if (rest > 0) text += "; and " + grouped(rest) + " more";
     const bool by_node = subject_.dofs != nullptr && subject_.dofs->equations() == matrix_.rows;
     result_.warnings.push_back(
         {"disconnected-parts",
-         "the matrix falls into " + std::to_string(parts.count) + " parts that share no entry: " + text +
-             ". " +
+         "the matrix falls into " + grouped(parts.count) + " parts that share no entry: " + text + ". " +
              (by_node ? "Each must be supported by itself: tie the parts together or hold each of them"
                       : "Each must be supported by itself; dofs of one node that do not act on each other "
                         "(in-plane "
@@ -307,8 +307,8 @@ Status check_dof_map_size(const DofMap& dofs, const std::string& dofs_path, cons
   const bool shorter = dofs.equations() < matrix.rows;
   return Status::bad_input(
       "dof-map-size",
-      "the dof map lists " + std::to_string(dofs.equations()) + " equations, " + matrix_path + " has " +
-          std::to_string(matrix.rows) + ": the map is too " + (shorter ? "short" : "long"),
+      "the dof map lists " + grouped(dofs.equations()) + " equations, " + matrix_path + " has " +
+          grouped(matrix.rows) + ": the map is too " + (shorter ? "short" : "long"),
       dofs_path,
       shorter ? "list every equation of the matrix, held ones and multipliers too"
               : "export map and matrix from the same model; for triplet text with empty last "

@@ -10,6 +10,7 @@
 #include "io/coincident.hpp"
 #include "io/joined_pairs.hpp"
 #include "io/place.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion {
 namespace {
@@ -24,7 +25,8 @@ std::string first_nodes(const std::vector<NodeNumber>& nodes) {
   for (std::size_t k = 0; k < std::min(kPlacesShown, nodes.size()); ++k) {
     text += (k == 0 ? "" : ", ") + std::to_string(nodes[k]);
   }
-  if (nodes.size() > kPlacesShown) text += " and " + std::to_string(nodes.size() - kPlacesShown) + " more";
+  if (nodes.size() > kPlacesShown)
+    text += " and " + grouped(static_cast<Offset>(nodes.size() - kPlacesShown)) + " more";
   return text;
 }
 
@@ -92,8 +94,9 @@ class NodeInspector {
   Warnings run() {
     if (!nodes_.without.empty() && !nodes_.number.empty()) {
       warn("nodes-without-place",
-           std::to_string(nodes_.without.size()) + " nodes of the dof map are not in the node table: " +
-               first_nodes(nodes_.without) + ". List them, or their motions are tested without places");
+           grouped(static_cast<Offset>(nodes_.without.size())) +
+               " nodes of the dof map are not in the node table: " + first_nodes(nodes_.without) +
+               ". List them, or their motions are tested without places");
     }
     if (nodes_.number.size() < 3) return std::move(warnings_);
     look_for_far();
@@ -120,9 +123,9 @@ class NodeInspector {
       if (out) far.push_back(nodes_.number[k]);
     }
     if (far.empty()) return;
-    warn("far-coordinates", std::to_string(far.size()) + (far.size() == 1 ? " node lies" : " nodes lie") +
-                                " far outside the rest: " + first_nodes(far) +
-                                ". Check coordinates and units");
+    warn("far-coordinates",
+         grouped(static_cast<Offset>(far.size())) + (far.size() == 1 ? " node lies" : " nodes lie") +
+             " far outside the rest: " + first_nodes(far) + ". Check coordinates and units");
   }
 
   void look_for_coincident() {
@@ -135,9 +138,11 @@ class NodeInspector {
       text += (k == 0 ? "" : ", ") + std::to_string(nodes_.number[pairs[k].first]) + " with " +
               std::to_string(nodes_.number[pairs[k].second]);
     }
-    if (pairs.size() > kPlacesShown) text += " and " + std::to_string(pairs.size() - kPlacesShown) + " more";
+    if (pairs.size() > kPlacesShown)
+      text += " and " + grouped(static_cast<Offset>(pairs.size() - kPlacesShown)) + " more";
     warn("coincident-nodes",
-         std::to_string(pairs.size()) + (pairs.size() == 1 ? " pair of nodes lies" : " pairs of nodes lie") +
+         grouped(static_cast<Offset>(pairs.size())) +
+             (pairs.size() == 1 ? " pair of nodes lies" : " pairs of nodes lie") +
              " at one place with nothing between them: " + text +
              ". A seam that was not merged? Merge the nodes, or tie them, unless a gap is meant");
   }
@@ -200,7 +205,8 @@ Warnings inspect_partners(const DofMap& dofs, const std::string& dofs_path) {
   if (lacking.empty()) return {};
   std::sort(lacking.begin(), lacking.end());
   return {{"missing-partners",
-           std::to_string(lacking.size()) + (lacking.size() == 1 ? " node lacks" : " nodes lack") +
+           grouped(static_cast<Offset>(lacking.size())) +
+               (lacking.size() == 1 ? " node lacks" : " nodes lack") +
                " a dof that nearly all nodes have: " + first_nodes(lacking) +
                ". Right for supports whose equations were left out; otherwise equations were lost",
            dofs_path}};

@@ -7,9 +7,9 @@
 #include <nlohmann/json.hpp>
 
 #include "model/exit_code.hpp"
+#include "model/numbers.hpp"
 #include "model/version.hpp"
 #include "report/markup.hpp"
-#include "report/numbers.hpp"
 
 namespace stanchion {
 namespace {

@@ -5,9 +5,9 @@
 #include <vector>
 
 #include "model/frequency.hpp"
+#include "model/numbers.hpp"
 #include "report/answer_svg.hpp"
 #include "report/chart.hpp"
-#include "report/numbers.hpp"
 
 namespace stanchion {
 namespace {

@@ -5,7 +5,7 @@
 #include <algorithm>
 #include <utility>
 
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion {
 

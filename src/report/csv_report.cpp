@@ -3,7 +3,7 @@
 #include <fmt/format.h>
 
 #include "model/names.hpp"
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 
 namespace stanchion {
 namespace {

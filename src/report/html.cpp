@@ -4,12 +4,12 @@
 
 #include <algorithm>
 
+#include "model/numbers.hpp"
 #include "report/answer_svg.hpp"
 #include "report/cause_words.hpp"
 #include "report/html_frame.hpp"
 #include "report/html_parts.hpp"
 #include "report/markup.hpp"
-#include "report/numbers.hpp"
 #include "report/staircase_svg.hpp"
 #include "report/text_sections.hpp"
 

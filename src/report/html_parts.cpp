@@ -6,12 +6,12 @@
 #include <cmath>
 #include <optional>
 
+#include "model/numbers.hpp"
 #include "report/cause_words.hpp"
 #include "report/html_frame.hpp"
 #include "report/label_layout.hpp"
 #include "report/markup.hpp"
 #include "report/model_view.hpp"
-#include "report/numbers.hpp"
 
 namespace stanchion {
 namespace {

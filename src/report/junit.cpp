@@ -5,9 +5,9 @@
 #include <algorithm>
 
 #include "model/names.hpp"
+#include "model/numbers.hpp"
 #include "report/cause_words.hpp"
 #include "report/markup.hpp"
-#include "report/numbers.hpp"
 #include "report/page.hpp"
 #include "report/text_sections.hpp"
 

@@ -2,9 +2,9 @@
 
 #include <algorithm>
 
+#include "model/numbers.hpp"
 #include "report/answer_svg.hpp"
 #include "report/chart.hpp"
-#include "report/numbers.hpp"
 
 namespace stanchion {
 namespace {

@@ -4,9 +4,9 @@
 
 #include <algorithm>
 
+#include "model/numbers.hpp"
 #include "model/version.hpp"
 #include "report/json_parts.hpp"
-#include "report/numbers.hpp"
 #include "report/page.hpp"
 #include "report/text_sections.hpp"
 

@@ -6,9 +6,9 @@
 #include <cmath>
 #include <vector>
 
+#include "model/numbers.hpp"
 #include "report/chart.hpp"
 #include "report/markup.hpp"
-#include "report/numbers.hpp"
 #include "report/staircase_points.hpp"
 
 namespace stanchion {

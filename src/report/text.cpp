@@ -2,8 +2,8 @@
 
 #include <fmt/format.h>
 
+#include "model/numbers.hpp"
 #include "model/version.hpp"
-#include "report/numbers.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {

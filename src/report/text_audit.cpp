@@ -3,7 +3,7 @@
 #include <cmath>
 
 #include "model/frequency.hpp"
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {

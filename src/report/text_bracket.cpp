@@ -5,7 +5,7 @@
 #include <utility>
 
 #include "model/frequency.hpp"
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {

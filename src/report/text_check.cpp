@@ -2,7 +2,7 @@
 
 #include <algorithm>
 
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {

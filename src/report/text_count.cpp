@@ -4,7 +4,7 @@
 #include <cmath>
 #include <string_view>
 
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {

@@ -1,16 +1,15 @@
 #include <fmt/format.h>
 
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {
 
 void write_forecast(Page& page, const Outcome& outcome) {
   const ForecastOutcome& forecast = *outcome.forecast;
-  page.sentence(fmt::format(
-      "One count will take {} and {} of memory.",
-      forecast.seconds < 0.001 ? "less than 1 ms" : "about " + duration_in_words(forecast.seconds),
-      bytes_in_words(forecast.peak_bytes_count)));
+  page.sentence(fmt::format("One count will take {} and {} of memory.",
+                            duration_in_sentence(forecast.seconds, "about "),
+                            bytes_in_words(forecast.peak_bytes_count)));
   page.blank();
   page.row("likely work", fmt::format("{}; {} if that does not settle it", forecast.assumption,
                                       duration_in_words(forecast.seconds_otherwise)));
@@ -22,9 +21,7 @@ void write_forecast(Page& page, const Outcome& outcome) {
            fmt::format("{} to count (the factor is thrown away), {} to keep the factor, {} to locate",
                        bytes_in_words(forecast.peak_bytes_count), bytes_in_words(forecast.peak_bytes_solve),
                        bytes_in_words(forecast.peak_bytes_locate)));
-  const std::string each = forecast.seconds_side_by_side < 0.001
-                               ? std::string("less than 1 ms")
-                               : "about " + duration_in_words(forecast.seconds_side_by_side);
+  const std::string each = duration_in_sentence(forecast.seconds_side_by_side, "about ");
   page.row("sweep", fmt::format("{} at a time in {}, {} a shift that is not definite",
                                 counted(forecast.side_by_side, "shift"),
                                 bytes_in_words(forecast.peak_bytes_side_by_side), each));

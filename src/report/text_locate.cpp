@@ -3,8 +3,8 @@
 #include <algorithm>
 
 #include "model/names.hpp"
+#include "model/numbers.hpp"
 #include "report/cause_words.hpp"
-#include "report/numbers.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {

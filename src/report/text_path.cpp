@@ -1,7 +1,7 @@
 #include <fmt/format.h>
 
 #include "model/names.hpp"
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/text_sections.hpp"
 
 namespace stanchion {

@@ -3,7 +3,7 @@
 #include <algorithm>
 #include <cmath>
 
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 #include "report/staircase_points.hpp"
 #include "report/text_sections.hpp"
 

@@ -2,11 +2,23 @@
 #include <gtest/gtest.h>
 
 #include "diagnose/planted.hpp"
+#include "diagnose/words.hpp"
 
 namespace stanchion {
 namespace {
 
 using namespace test;
+
+TEST(PlantedNames, NumbersOfThingsAreGroupedNumbersOfNodesAreNot) {
+  CauseFacts facts;
+  facts.cause = Cause::kRedundantConstraint;
+  facts.count = 2999;
+  facts.nodes = 12000;
+  facts.place = "node 45678, lm1";
+  EXPECT_EQ(explanation_of(facts),
+            "2,999 constraints repeat others: the multipliers of 12,000 nodes, node 45678 among them, can "
+            "exchange force among themselves without any effect on the structure.");
+}
 
 TEST(PlantedNames, WithoutMapsEquationsAreNamed) {
   PlantedModel model;

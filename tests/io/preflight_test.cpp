@@ -57,7 +57,7 @@ TEST(Preflight, ManyPlacesAreSummarised) {
   const auto report = inspect(from_triplets(100000, {{0, 0, 2}}));
   ASSERT_EQ(report.warnings.size(), 1U);
   EXPECT_EQ(report.facts.empty_rows, 99999);
-  EXPECT_NE(report.warnings[0].message.find("row 6; and 99994 more"), std::string::npos)
+  EXPECT_NE(report.warnings[0].message.find("row 6; and 99,994 more"), std::string::npos)
       << report.warnings[0].message;
 }
 

@@ -6,12 +6,12 @@
 #include <fstream>
 #include <sstream>
 
+#include "model/numbers.hpp"
 #include "report/csv_report.hpp"
 #include "report/html.hpp"
 #include "report/junit.hpp"
 #include "report/markup.hpp"
 #include "report/model_view.hpp"
-#include "report/numbers.hpp"
 #include "report/refusal.hpp"
 #include "report/samples.hpp"
 #include "report/text.hpp"

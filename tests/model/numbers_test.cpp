@@ -1,4 +1,4 @@
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 
 #include <gtest/gtest.h>
 
@@ -66,6 +66,12 @@ TEST(Numbers, DurationsChangeTheirUnit) {
   EXPECT_EQ(duration_in_words(75), "1 min 15 s");
   EXPECT_EQ(duration_in_words(7260), "2 h 1 min");
   EXPECT_EQ(duration_in_words(-1), "unknown");
+}
+
+TEST(Numbers, DurationsInASentenceAreQualifiedUnlessTooShort) {
+  EXPECT_EQ(duration_in_sentence(0.0004, "about "), "less than 1 ms");
+  EXPECT_EQ(duration_in_sentence(0.0312, "about "), "about 0.031 s");
+  EXPECT_EQ(duration_in_sentence(75), "1 min 15 s");
 }
 
 TEST(Numbers, CountedNounsAgree) {

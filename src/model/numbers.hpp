@@ -29,6 +29,9 @@ std::string flops_in_words(double flops);
 /// 0.0004 -> "<1 ms", 0.0312 -> "0.031 s", 75 -> "1 min 15 s", 7260 -> "2 h 1 min".
 std::string duration_in_words(double seconds);
 
+/// Within a sentence: "less than 1 ms", or `qualifier` ("about ") and the duration in words.
+std::string duration_in_sentence(double seconds, const char* qualifier = "");
+
 /// (1, "zero direction") -> "1 zero direction"; (6, ...) -> "6 zero directions"; 0 -> "no zero direction".
 std::string counted(Offset number, const std::string& noun);
 

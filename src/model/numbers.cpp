@@ -1,4 +1,4 @@
-#include "report/numbers.hpp"
+#include "model/numbers.hpp"
 
 #include <fmt/format.h>
 
@@ -75,6 +75,10 @@ std::string duration_in_words(double seconds) {
   const auto whole = static_cast<Offset>(std::llround(seconds));
   if (whole < 3600) return fmt::format("{} min {} s", whole / 60, whole % 60);
   return fmt::format("{} h {} min", whole / 3600, whole % 3600 / 60);
+}
+
+std::string duration_in_sentence(double seconds, const char* qualifier) {
+  return seconds < 0.001 ? "less than 1 ms" : qualifier + duration_in_words(seconds);
 }
 
 std::string counted(Offset number, const std::string& noun) {
