@@ -1,5 +1,7 @@
 #include "model/input_files.hpp"
 
+#include <algorithm>
+
 #include <utility>
 
 namespace stanchion {
@@ -27,6 +29,11 @@ std::optional<std::string>* file_of_role(InputRequest& input, std::string_view r
   if (role == "fix") return &input.fix;
   if (role == "multipliers") return &input.multipliers;
   return nullptr;
+}
+
+bool has_matrix(const Outcome& outcome, std::string_view role) {
+  return std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
+                     [&](const InputRecord& input) { return input.role == role; });
 }
 
 }  // namespace stanchion

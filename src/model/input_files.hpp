@@ -6,6 +6,7 @@
 #include <string_view>
 #include <vector>
 
+#include "stanchion/outcome.hpp"
 #include "stanchion/request.hpp"
 
 namespace stanchion {
@@ -21,5 +22,8 @@ std::vector<InputFile> input_files(const InputRequest& input);
 
 /// The member for "geometric", "mass", "dofs", "nodes", "axes", "fix" or "multipliers"; null for other roles.
 std::optional<std::string>* file_of_role(InputRequest& input, std::string_view role);
+
+/// Whether a matrix of this role ("geometric", "mass", ...) was read.
+bool has_matrix(const Outcome& outcome, std::string_view role);
 
 }  // namespace stanchion

@@ -5,6 +5,7 @@
 #include <vector>
 
 #include "model/frequency.hpp"
+#include "model/input_files.hpp"
 #include "model/numbers.hpp"
 #include "report/answer_svg.hpp"
 #include "report/chart.hpp"
@@ -153,9 +154,9 @@ std::string audit_svg(const Outcome& outcome, ChartWidth width) {
   double high = std::max(shown(audit.range.to), low);
   if (high > 0 && low > 0 && low < 0.3 * high) low = 0;
   high += 0.02 * (high - low);  // the end of the range is seen
-  const bool geometric = std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
-                                     [](const InputRecord& input) { return input.role == "geometric"; });
-  const std::string axis = audit.in_hertz ? "frequency, Hz" : geometric ? "load factor f" : "eigenvalue s";
+  const std::string axis = audit.in_hertz                     ? "frequency, Hz"
+                           : has_matrix(outcome, "geometric") ? "load factor f"
+                                                              : "eigenvalue s";
   return AuditChart(outcome, width, low, high)
       .draw(axis + "; bar: as many counted as listed; hatched: more counted; meshed: fewer, or others");
 }

@@ -4,6 +4,7 @@
 
 #include <algorithm>
 
+#include "model/input_files.hpp"
 #include "model/numbers.hpp"
 #include "report/answer_svg.hpp"
 #include "report/cause_words.hpp"
@@ -53,11 +54,8 @@ std::string standing(const Outcome& outcome) {
 }
 
 std::string question_of(const Outcome& outcome) {
-  const auto has = [&](const char* role) {
-    return std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
-                       [&](const InputRecord& input) { return input.role == role; });
-  };
-  return question_in_words({outcome.command, outcome.located.has_value(), has("geometric"), has("mass")});
+  return question_in_words({outcome.command, outcome.located.has_value(), has_matrix(outcome, "geometric"),
+                            has_matrix(outcome, "mass"), outcome.path.has_value()});
 }
 
 std::string question_to_html(const Outcome& outcome) {
@@ -67,9 +65,7 @@ std::string question_to_html(const Outcome& outcome) {
   };
   row("question", escaped(question_of(outcome)));
   row("as typed", command_to_html(outcome.arguments));
-  const bool geometric = std::any_of(outcome.inputs.begin(), outcome.inputs.end(),
-                                     [](const InputRecord& i) { return i.role == "geometric"; });
-  if (geometric) {
+  if (has_matrix(outcome, "geometric")) {
     const bool minus =
         std::find(outcome.arguments.begin(), outcome.arguments.end(), "minus") != outcome.arguments.end();
     row("sign of G", minus ? "K - f G: the file was written for the minus sign" : "K + f G");
@@ -134,10 +130,11 @@ std::string chart_of(const Outcome& outcome, ChartWidth size) {
 }
 
 std::string inputs_to_html(const Outcome& outcome) {
-  std::string html = begin_table("Inputs", "inputs") +
-                     "<tr><th scope=\"col\">input</th><th scope=\"col\">file</th><th scope=\"col\" "
-                     "class=\"right\">equations</th><th "
-                     "class=\"right\">entries</th><th scope=\"col\">SHA-256</th></tr>\n";
+  std::string html =
+      begin_table("Inputs", "inputs",
+                  "<th scope=\"col\">input</th><th scope=\"col\">file</th><th scope=\"col\" "
+                  "class=\"right\">equations</th><th scope=\"col\" class=\"right\">entries</th>"
+                  "<th scope=\"col\">SHA-256</th>");
   for (const InputRecord& input : outcome.inputs) {
     html += fmt::format(
         "<tr><td>{}{}</td><td>{}</td><td class=\"right\">{}</td><td class=\"right\">{}</td><td "
@@ -179,7 +176,8 @@ std::string to_html(const Outcome& outcome, bool good, bool unresolved) {
                                   : VerdictMark::kNotGood) +
           "<div>\n";
   for (std::size_t k = 0; k < lead; ++k) {
-    html += fmt::format("<p{}>{}</p>\n", k == 0 ? " class=\"lead\"" : "", flowing(blocks[k].text));
+    html += k == 0 ? fmt::format("<p class=\"lead\">{}</p>\n", headline(blocks[k].text))
+                   : fmt::format("<p>{}</p>\n", flowing(blocks[k].text));
   }
   if (outcome.located) html += fmt::format("<p>{}</p>\n", flowing(location_headline(*outcome.located)));
   html += fmt::format("<p class=\"stand\">{}</p></div></div>\n", flowing(standing(outcome)));

@@ -61,6 +61,8 @@ std::string verdict_mark(VerdictMark mark) {
 
 std::string question_in_words(const QuestionAsked& asked) {
   const std::string& c = asked.command;
+  if (c == "check" && asked.steps)
+    return "Which step of the load path is the first that is not positive definite?";
   if (c == "check")
     return asked.located ? "Is K positive definite? If not: where, and why?" : "Is K positive definite?";
   if (c == "locate") return "Which nodes carry the zero, negative and weak directions of K, and why?";
@@ -75,25 +77,37 @@ std::string question_in_words(const QuestionAsked& asked) {
   return "What was asked: " + c;
 }
 
+namespace {
+
+/// For a shell: as it is where no character has a meaning of its own, else between single quotes.
+std::string quoted(const std::string& argument) {
+  constexpr const char* kPlain = "abcdefghijklmnopqrstuvwxyzABCDEFGHIJKLMNOPQRSTUVWXYZ0123456789@%+=:,./_-";
+  if (!argument.empty() && argument.find_first_not_of(kPlain) == std::string::npos) return argument;
+  std::string text = "'";
+  for (const char c : argument) text += c == '\'' ? std::string("'\\''") : std::string(1, c);
+  return text + "'";
+}
+
+}  // namespace
+
 std::string command_to_html(const std::vector<std::string>& arguments) {
   std::string command = escaped(program_name());
   for (const std::string& argument : arguments) {
-    const bool plain = argument.find_first_of(" \t\"'$*?;&|<>()") == std::string::npos && !argument.empty();
-    const std::string word = escaped(plain ? argument : "'" + argument + "'");
+    const std::string word = escaped(quoted(argument));
     command += " " + (argument.rfind('-', 0) == 0 ? "<span class=\"num\">" + word + "</span>" : word);
   }
   return fmt::format("<code>{}</code>", command);
 }
 
-std::string begin_table(const std::string& name, const std::string& kind) {
+std::string begin_table(const std::string& name, const std::string& kind, const std::string& head) {
   return fmt::format(
       "<div class=\"scroll\" role=\"group\" aria-label=\"{0}\" tabindex=\"0\"><table{1} "
-      "aria-label=\"{0}\">\n",
-      escaped(name), kind.empty() ? "" : fmt::format(" class=\"{}\"", kind));
+      "aria-label=\"{0}\">\n<thead><tr>{2}</tr></thead>\n<tbody>\n",
+      escaped(name), kind.empty() ? "" : fmt::format(" class=\"{}\"", kind), head);
 }
 
 std::string end_table() {
-  return "</table></div>\n";
+  return "</tbody></table></div>\n";
 }
 
 std::string path_to_html(const std::string& path) {

@@ -30,7 +30,7 @@ std::string verdict_mark(VerdictMark mark);
 
 struct QuestionAsked {
   std::string command;
-  bool located = false, geometric = false, mass = false;
+  bool located = false, geometric = false, mass = false, steps = false;
 };
 
 /// One sentence that ends with a question mark.
@@ -40,8 +40,9 @@ std::string question_in_words(const QuestionAsked& asked);
 std::string command_to_html(const std::vector<std::string>& arguments);
 
 /// Opens a table called `name` of the page's class `kind` (may be empty), in a box that scrolls, by keys too,
-/// where the window is too narrow for it.
-std::string begin_table(const std::string& name, const std::string& kind);
+/// where the window is too narrow for it; `head` are the cells of its first row, again on every sheet of
+/// paper.
+std::string begin_table(const std::string& name, const std::string& kind, const std::string& head);
 std::string end_table();
 
 /// A path that may go on in the next line after each folder.

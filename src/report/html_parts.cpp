@@ -28,15 +28,17 @@ constexpr std::size_t kEasyColumns = 7;
 
 std::string table_of(const Page::Block& block, const std::string& name) {
   const bool many = !block.cells.empty() && block.cells[0].size() > kEasyColumns;
-  std::string html = begin_table(name, many ? "close" : "");
-  for (std::size_t r = 0; r < block.cells.size(); ++r) {
-    html += "<tr>";
+  const auto cells_of = [&](std::size_t r, const char* kind, const char* scope) {
+    std::string cells;
     for (std::size_t c = 0; c < block.cells[r].size(); ++c) {
-      html += fmt::format("<{0}{1}{2}>{3}</{0}>", r == 0 ? "th" : "td", r == 0 ? " scope=\"col\"" : "",
-                          c < block.to_the_right ? " class=\"right\"" : "", escaped(block.cells[r][c]));
+      cells += fmt::format("<{0}{1}{2}>{3}</{0}>", kind, scope,
+                           c < block.to_the_right ? " class=\"right\"" : "", escaped(block.cells[r][c]));
     }
-    html += "</tr>\n";
-  }
+    return cells;
+  };
+  std::string html =
+      begin_table(name, many ? "close" : "", block.cells.empty() ? "" : cells_of(0, "th", " scope=\"col\""));
+  for (std::size_t r = 1; r < block.cells.size(); ++r) html += "<tr>" + cells_of(r, "td", "") + "</tr>\n";
   return html + end_table();
 }
 
@@ -44,9 +46,9 @@ std::string ranked_table(const Direction& direction) {
   if (direction.nodes.empty()) return "";
   double most = 0;
   for (const DofShare& d : direction.nodes) most = std::max(most, d.share);
-  std::string html = begin_table("Nodes and dofs by their share", "") +
-                     "<tr><th scope=\"col\">node</th><th scope=\"col\">dof</th><th scope=\"col\" "
-                     "colspan=\"2\">share</th></tr>\n";
+  std::string html = begin_table("Nodes and dofs by their share", "",
+                                 "<th scope=\"col\">node</th><th scope=\"col\">dof</th><th scope=\"col\" "
+                                 "colspan=\"2\">share</th>");
   for (std::size_t k = 0; k < std::min(kNodesShown, direction.nodes.size()); ++k) {
     const DofShare& d = direction.nodes[k];
     html += fmt::format(
@@ -250,7 +252,8 @@ std::string histogram(const LocalAccuracy& accuracy, ChartWidth size) {
   return svg + "</svg>\n";
 }
 
-std::string scale_of(double top) {
+/// The dots of the field with the digits they stand for; `without` some nodes have no figure.
+std::string scale_of(double top, bool without) {
   std::string html = "<p class=\"scale\">";
   for (int step = 0; step < 6; ++step) {
     html += fmt::format(
@@ -258,6 +261,10 @@ std::string scale_of(double top) {
         "style=\"stroke-width:{3:.1f}\"/></svg> {1:.1f} to {2:.1f}</span>",
         step, top * step / 6, top * (step + 1) / 6, 7 * field_dot(step));
   }
+  if (without)
+    html +=
+        "<span><svg viewBox=\"0 0 16 12\" aria-hidden=\"true\"><path class=\"v-dot\" d=\"M8 6h0\"/></svg> no "
+        "figure</span>";
   return html + "</p>";
 }
 
@@ -329,9 +336,9 @@ std::string parts_to_html(const LocateOutcome& located) {
   }
   std::string html = table_of(table, "Connected parts");
   if (rigid)
-    html +=
-        "<p>x to turn z: energy of each rigid motion of the part over what its dofs have by themselves; "
-        "about 1e-16 means free.</p>";
+    html += tag("p",
+                "x to turn z: energy of each rigid motion of the part over what its dofs have by themselves; "
+                "about 1e-16 means free.");
   const auto rest = static_cast<Offset>(located.components.size()) + located.components_left_out -
                     static_cast<Offset>(std::min(kPartsShown, located.components.size()));
   if (rest > 0) html += fmt::format("<p>and {} more</p>", grouped(rest));
@@ -368,9 +375,9 @@ std::string accuracy_to_html(const LocateOutcome& located) {
   html += in_both_widths([&](ChartWidth width) { return histogram(accuracy, width); });
   const std::string field =
       draw_field(located.picture, accuracy.by_node, std::max(accuracy.attention, accuracy.largest));
-  std::string worst = begin_table("Nodes at which most digits are lost", "") +
-                      "<tr><th scope=\"col\">node</th><th scope=\"col\">dof</th><th scope=\"col\" "
-                      "class=\"right\">digits lost</th></tr>\n";
+  std::string worst = begin_table("Nodes at which most digits are lost", "",
+                                  "<th scope=\"col\">node</th><th scope=\"col\">dof</th><th scope=\"col\" "
+                                  "class=\"right\">digits lost</th>");
   for (std::size_t k = 0; k < std::min(kNodesShown, accuracy.worst.size()); ++k) {
     const DofShare& d = accuracy.worst[k];
     worst += fmt::format("<tr><td>{}</td><td>{}</td><td class=\"right\">{:.1f}</td></tr>\n",
@@ -378,11 +385,13 @@ std::string accuracy_to_html(const LocateOutcome& located) {
   }
   worst += end_table();
   if (field.empty()) return html + worst;
+  const bool without =
+      std::any_of(accuracy.by_node.begin(), accuracy.by_node.end(), [](float v) { return v < 0; });
   return html +
          fmt::format(
              "<figure><div class=\"plates\">{}<div>{}</div></div><figcaption>The largest digits lost at each "
              "node.{}</figcaption></figure>\n",
-             field, worst, scale_of(std::max(accuracy.attention, accuracy.largest)));
+             field, worst, scale_of(std::max(accuracy.attention, accuracy.largest), without));
 }
 
 }  // namespace stanchion

@@ -7,13 +7,13 @@ const char* const kHtmlStyle = R"css(
   color-scheme: light dark;
   --paper: #f4f1ea; --sheet: #fffdf9; --ink: #1c2530; --soft: #56616d; --line: #d8d2c4; --tint: #efeadf;
   --blue: #17608f; --blue-soft: #a9cbe0; --orange: #c4560a; --ring: #7d1d4f; --clear: #17608f; --heed: #b2470a;
-  --open: #6b5a2a; --f0: #d5dfe6; --f1: #9fc0d4; --f2: #5f9bc0; --f3: #2c6f9e; --f4: #b85a14; --f5: #7d1d4f;
+  --open: #6b5a2a; --f0: #a9bdcb; --f1: #7da9c6; --f2: #4a8ab6; --f3: #1f5f8f; --f4: #b85a14; --f5: #7d1d4f;
 }
 @media (prefers-color-scheme: dark) {
   :root {
     --paper: #0f1317; --sheet: #171c22; --ink: #ebe7dd; --soft: #a0abb6; --line: #343d47; --tint: #212830;
     --blue: #79bce8; --blue-soft: #34566d; --orange: #f29a4e; --ring: #f2a0c4; --clear: #79bce8; --heed: #f29a4e;
-    --open: #d9c37a; --f0: #3a454f; --f1: #4d7690; --f2: #62a0c8; --f3: #9dd0f0; --f4: #f29a4e; --f5: #f2a0c4;
+    --open: #d9c37a; --f0: #5a6975; --f1: #5784a0; --f2: #62a0c8; --f3: #9dd0f0; --f4: #f29a4e; --f5: #f2a0c4;
   }
 }
 * { box-sizing: border-box; }
@@ -79,7 +79,7 @@ text.v-number { font-size: 13px; paint-order: stroke; stroke: var(--tint); strok
 .v-triad path, .v-bar path { stroke: var(--soft); fill: none; stroke-width: 1.4; } .v-triad text, .v-bar text { fill: var(--soft); font-size: 11px; }
 .v-field { fill: none; stroke-width: 3.4; stroke-linecap: round; }
 .v-0 { stroke: var(--f0); } .v-1 { stroke: var(--f1); } .v-2 { stroke: var(--f2); } .v-3 { stroke: var(--f3); } .v-4 { stroke: var(--f4); } .v-5 { stroke: var(--f5); }
-.scale { display: flex; flex-wrap: wrap; gap: .2rem 1rem; } .scale svg { width: 1.1rem; height: .8rem; vertical-align: -1px; }
+.scale { display: flex; flex-wrap: wrap; gap: .2rem 1rem; } .scale svg { width: 1.1rem; height: .8rem; vertical-align: -1px; background: var(--tint); border-radius: 3px; }
 .c-bar { fill: var(--blue); } .c-bar.c-heed { fill: var(--orange); } .c-bar.c-alarm { fill: var(--ring); }
 .c-axis { stroke: var(--soft); fill: none; } .c-level { stroke: var(--ring); fill: none; stroke-dasharray: 4 3; } .c-step { stroke: var(--blue); fill: none; stroke-width: 2.2; }
 svg text.c-small { font-size: 11px; fill: var(--soft); }
@@ -99,13 +99,13 @@ footer { border-top: 3px double var(--line); margin-top: .8rem; padding-top: .7r
 }
 @media print {
   :root { color-scheme: light; --paper: #fff; --sheet: #fff; --ink: #111; --soft: #444; --line: #bbb; --tint: #f6f5f2; --blue: #17608f;
-    --orange: #c4560a; --ring: #7d1d4f; --clear: #17608f; --heed: #b2470a; --open: #6b5a2a; --f0: #d5dfe6; --f1: #9fc0d4; --f2: #5f9bc0; --f3: #2c6f9e; --f4: #b85a14; --f5: #7d1d4f; }
+    --orange: #c4560a; --ring: #7d1d4f; --clear: #17608f; --heed: #b2470a; --open: #6b5a2a; --f0: #a9bdcb; --f1: #7da9c6; --f2: #4a8ab6; --f3: #1f5f8f; --f4: #b85a14; --f5: #7d1d4f; }
   @page { size: A4; margin: 16mm 15mm; }
   body { font-size: 10pt; } main { padding: 0; max-width: none; min-height: 0; }
   section.band { display: block; padding: .7rem 0; } section.band > h2 { margin-bottom: .3rem; }
   .verdict { padding: 1.1rem 0 .9rem; } .verdict .lead { font-size: 1.4rem; } td, th { padding: .12rem .7rem .12rem 0; }
   .cause .columns { gap: .4rem 1.4rem; } .plates { gap: .5rem; } svg.chart { max-width: 36rem; } .cause { padding-bottom: .7rem; }
-  figure, tr, li, .cause .columns, .cause > header, .verdict, .wide { break-inside: avoid; } h2, h3, .why { break-after: avoid; }
+  figure, tr, li, .cause .columns, .cause > header, .verdict, .wide, table.inputs, dl { break-inside: avoid; } h2, h3, .why { break-after: avoid; }
   * { -webkit-print-color-adjust: exact; print-color-adjust: exact; }
 }
 )css";

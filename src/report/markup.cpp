@@ -1,6 +1,7 @@
 #include "report/markup.hpp"
 
 #include <algorithm>
+#include <iterator>
 
 namespace stanchion {
 namespace {
@@ -38,6 +39,23 @@ std::size_t end_of_number(std::string_view text, std::size_t at) {
   return end > exponent + 2 ? end : at;
 }
 
+bool is_digit(char c) {
+  return c >= '0' && c <= '9';
+}
+
+/// "6" and "zero", "node" and "12", but not "0" and "and".
+bool stay_together(std::string_view word, std::string_view next) {
+  constexpr std::string_view kNumbered[] = {"node", "row", "column", "step"},
+                             kLinks[] = {"and", "of", "at", "to", "is", "in"};
+  if (word.empty() || next.empty()) return false;
+  const auto letters = word.find_first_not_of('(');
+  if (letters != word.npos && is_digit(next[0]) &&
+      std::find(std::begin(kNumbered), std::end(kNumbered), word.substr(letters)) != std::end(kNumbered))
+    return true;
+  return is_digit(word[0]) && is_digit(word.back()) && next[0] >= 'a' && next[0] <= 'z' &&
+         std::find(std::begin(kLinks), std::end(kLinks), next) == std::end(kLinks);
+}
+
 }  // namespace
 
 std::string flowing(std::string_view text) {
@@ -54,6 +72,21 @@ std::string flowing(std::string_view text) {
     from = at = end;
   }
   return result + escaped(text.substr(from));
+}
+
+std::string headline(std::string_view text) {
+  constexpr const char* kNoBreak = "\xC2\xA0";
+  const auto word_at = [&](std::size_t from) { return text.substr(from, text.find(' ', from) - from); };
+  std::string bound(word_at(0));
+  std::string_view before = word_at(0);
+  for (std::size_t at = bound.size(); at < text.size();) {
+    const std::string_view word = word_at(at + 1);
+    bound += stay_together(before, word) ? kNoBreak : " ";
+    bound += word;
+    before = word;
+    at += 1 + word.size();
+  }
+  return flowing(bound);
 }
 
 std::string escaped(std::string_view text) {

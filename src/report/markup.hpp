@@ -12,4 +12,8 @@ std::string escaped(std::string_view text);
 /// The same for running text of an HTML page; numbers with an exponent do not break at its sign.
 std::string flowing(std::string_view text);
 
+/// The same for large type, where lines are short: a number stays with the noun it counts ("6 zero
+/// directions" keeps "6 zero" together), and "node", "row", "column" or "step" with its number.
+std::string headline(std::string_view text);
+
 }  // namespace stanchion

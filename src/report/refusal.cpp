@@ -52,8 +52,8 @@ std::string reason_to_html(const Refusal& refusal) {
 std::string question_to_html(const Refusal& refusal) {
   const auto& typed = refusal.arguments;
   const bool located = std::find(typed.begin(), typed.end(), "--locate") != typed.end();
-  const std::string question =
-      question_in_words({refusal.command, located, names(refusal, "geometric"), names(refusal, "mass")});
+  const std::string question = question_in_words({refusal.command, located, names(refusal, "geometric"),
+                                                  names(refusal, "mass"), names(refusal, "step")});
   return fmt::format("<dl>\n<dt>question</dt><dd>{}</dd>\n<dt>as typed</dt><dd>{}</dd>\n</dl>\n",
                      escaped(question), command_to_html(typed));
 }
@@ -61,7 +61,7 @@ std::string question_to_html(const Refusal& refusal) {
 std::string inputs_to_html(const Refusal& refusal) {
   if (refusal.inputs.empty()) return "";
   std::string html =
-      begin_table("Inputs", "inputs") + "<tr><th scope=\"col\">input</th><th scope=\"col\">file</th></tr>\n";
+      begin_table("Inputs", "inputs", "<th scope=\"col\">input</th><th scope=\"col\">file</th>");
   for (const TableRecord& input : refusal.inputs)
     html += fmt::format("<tr><td>{}</td><td>{}</td></tr>\n", escaped(input.role), path_to_html(input.path));
   return html + end_table() +
@@ -82,7 +82,7 @@ std::string not_checked_to_html(const Refusal& refusal) {
 
 std::string refusal_to_html(const Refusal& refusal) {
   std::string html = "<div class=\"verdict\">" + verdict_mark(VerdictMark::kNoAnswer) + "<div>\n";
-  html += fmt::format("<p class=\"lead\">No answer: {}</p>\n", flowing(refusal.why.message()));
+  html += fmt::format("<p class=\"lead\">No answer: {}</p>\n", headline(refusal.why.message()));
   html += fmt::format("<p>{}</p>\n", what_happened(refusal));
   html += fmt::format(
       "<p class=\"stand\">{}</p></div></div>\n",

@@ -169,7 +169,7 @@ std::string staircase_svg(const Outcome& outcome, bool logarithmic, ChartWidth w
   const bool one_sign = points.front().shift > 0 || points.back().shift < 0;
   const std::string meaning = meaning_of(outcome.count->counts);
   return StaircasePicture(points, logarithmic && one_sign, width)
-      .draw(meaning, axis_of(meaning) + ": " + meaning + "; hatched: the count jumps somewhere in there");
+      .draw(meaning, axis_of(meaning) + ": " + meaning + "; hatched: it jumps in there");
 }
 
 }  // namespace stanchion

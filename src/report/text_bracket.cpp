@@ -5,6 +5,7 @@
 #include <utility>
 
 #include "model/frequency.hpp"
+#include "model/input_files.hpp"
 #include "model/numbers.hpp"
 #include "report/text_sections.hpp"
 
@@ -13,10 +14,7 @@ namespace {
 
 /// "critical factor" or "eigenvalue".
 std::string noun_of(const Outcome& outcome) {
-  for (const InputRecord& input : outcome.inputs) {
-    if (input.role == "geometric") return "critical factor";
-  }
-  return "eigenvalue";
+  return has_matrix(outcome, "geometric") ? "critical factor" : "eigenvalue";
 }
 
 std::string end_of(double value, bool hertz) {

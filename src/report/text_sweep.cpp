@@ -99,7 +99,7 @@ void write_jumps(Page& page, const Outcome& outcome) {
   for (const Jump& jump : jumps) {
     rows.push_back({exact(jump.low), exact(jump.high), rounded(jump.high - jump.low), grouped(jump.count)});
   }
-  page.table(rows, 3);
+  page.table(rows, 4);
   if (overlap(jumps)) {
     page.sentence(
         "Stretches overlap at a shift on a value: each value is counted once, and may lie in both of them.");

@@ -9,6 +9,7 @@
 #include "model/numbers.hpp"
 #include "report/csv_report.hpp"
 #include "report/html.hpp"
+#include "report/html_frame.hpp"
 #include "report/junit.hpp"
 #include "report/markup.hpp"
 #include "report/model_view.hpp"
@@ -80,7 +81,8 @@ TEST(Html, SaysVerdictRiskDigitsAndCausesInTheWordsOfTheText) {
   outcome.risk = 1e-6;
   outcome.risk_allowed = 1e-5;
   const std::string page = to_html(outcome, false, true);
-  EXPECT_NE(page.find("K is indefinite: 1 negative direction, 8 zero directions"), std::string::npos);
+  EXPECT_NE(page.find("K is indefinite: 1\xC2\xA0negative direction, 8\xC2\xA0zero directions"),
+            std::string::npos);
   const auto number = [](const std::string& text) { return "<span class=\"num\">" + text + "</span>"; };
   EXPECT_NE(page.find("at most " + number("1e-06") + " (allowed: " + number("1e-05") + ")"),
             std::string::npos);
@@ -145,6 +147,24 @@ TEST(Markup, NumbersWithAnExponentStayOnOneLine) {
   EXPECT_EQ(flowing("at 1.33e-09. <6>"), "at <span class=\"num\">1.33e-09</span>. &lt;6&gt;");
   EXPECT_EQ(flowing("2e-5"), "<span class=\"num\">2e-5</span>");
   EXPECT_EQ(flowing("1e+10, e-9, 3e-, file-7.mtx & more"), "1e+10, e-9, 3e-, file-7.mtx &amp; more");
+}
+
+TEST(Markup, NumbersStayWithWhatTheyCountInAHeadline) {
+  EXPECT_EQ(headline("1 negative direction, 6 zero ones"), "1\xC2\xA0negative direction, 6\xC2\xA0zero ones");
+  EXPECT_EQ(headline("between 0 and 1.9, 4 counted (node 12, ux)"),
+            "between 0 and 1.9, 4\xC2\xA0"
+            "counted (node\xC2\xA0"
+            "12, ux)");
+  EXPECT_EQ(headline(""), "");
+  EXPECT_EQ(headline("a  b <3 "), "a  b &lt;3 ");
+}
+
+TEST(Markup, CommandsCanBePastedIntoAShell) {
+  const auto code = [](const std::string& words) { return "<code>stanchion " + words + "</code>"; };
+  EXPECT_EQ(command_to_html({"check", "a/K-1.mtx"}), code("check a/K-1.mtx"));
+  EXPECT_EQ(command_to_html({"it's", "", "a b", "#1", "~x", "a\\b"}),
+            code("&#39;it&#39;\\&#39;&#39;s&#39; &#39;&#39; &#39;a b&#39; &#39;#1&#39; &#39;~x&#39; "
+                 "&#39;a\\b&#39;"));
 }
 
 TEST(Csv, FieldsAreQuotedAsRfc4180Asks) {
