@@ -183,7 +183,7 @@ class ResidualBrackets {
     if (!counted.ok()) return counted.status();
     high = *counted;
     if (!high) return nothing();
-    auto found = bracket_between(low, *high, low ? low->shift : lowest(), high->shift);
+    auto found = bracket_counted(low, *high);
     if (!found.ok() || !*found) return found;
     return std::optional(
         cut_to(std::move(**found), range.low.value_or(lowest()), *range.high, answer_.on_ends));
@@ -199,7 +199,11 @@ class ResidualBrackets {
     if (!question_.past_values) return std::optional<CountFact>();
     const auto band = *asked ? (*asked)->band : std::nullopt;
     const double size = std::fabs(end), edge = !band ? end : outwards > 0 ? band->second : band->first;
-    const double start = std::fabs(edge - end) < kFarthestEnd * size ? edge : end;
+    return exact_behind(std::fabs(edge - end) < kFarthestEnd * size ? edge : end, size, outwards);
+  }
+
+  /// An exact count outwards of `start`, by a part of `size`; nothing where none is near.
+  Result<std::optional<CountFact>> exact_behind(double start, double size, int outwards) {
     for (double part = kNearestEnd; part < kFarthestEnd; part *= 32) {
       const double shift =
           shortest_between(start + outwards * part * size, start + 2 * outwards * part * size);
@@ -208,6 +212,41 @@ class ResidualBrackets {
       if (*beyond && (*beyond)->exact()) return beyond;
     }
     return std::optional<CountFact>();
+  }
+
+  /// All values between two exact counts. Where the interval of a value holds one of the two ends, and cannot
+  /// tell on which side the value lies, the search goes on to behind it, and the counts tell.
+  Result<std::optional<FoundRange>> bracket_counted(const std::optional<CountFact>& low,
+                                                    const CountFact& high) {
+    std::optional<CountFact> outer_low = low, outer_high = high;
+    double part = 1;
+    for (int tries = 0; tries < kMostAttempts; ++tries, part *= 32) {
+      held_low_ = held_high_ = false;
+      auto found =
+          bracket_between(outer_low, *outer_high, outer_low ? outer_low->shift : lowest(), outer_high->shift);
+      if (!found.ok()) return found;
+      if (*found) return cut_back(std::move(**found), outer_low, *outer_high, low, high);
+      if (!held_low_ && !held_high_) break;
+      for (const bool upper : {false, true}) {
+        if (!(upper ? held_high_ : held_low_)) continue;
+        std::optional<CountFact>& outer = upper ? outer_high : outer_low;
+        auto behind = exact_behind(outer->shift, part * std::fabs(outer->shift), upper ? 1 : -1);
+        if (!behind.ok()) return behind.status();
+        if (!*behind) return nothing();
+        outer = *behind;
+      }
+    }
+    return nothing();
+  }
+
+  Result<std::optional<FoundRange>> cut_back(FoundRange found, const std::optional<CountFact>& outer_low,
+                                             const CountFact& outer_high, const std::optional<CountFact>& low,
+                                             const CountFact& high) const {
+    if (found.complete->from == (low ? low->shift : lowest()) && found.complete->to == high.shift)
+      return std::optional(std::move(found));
+    auto cut = cut_by_counts(std::move(found), outer_low, outer_high, low, high);
+    if (!cut.ok()) return cut.status();
+    return std::optional(std::move(*cut));
   }
 
   /// All values between two exact counts.
@@ -250,8 +289,8 @@ class ResidualBrackets {
       });
       if (!enough.ok()) return enough.status();
       auto found = settle(chosen, low, high, from, to);
-      if (!found.ok() || *found) return found;
-      search_->look_closer();
+      if (!found.ok() || *found || held_low_ || held_high_) return found;
+      if (!search_->look_closer()) break;
     }
     return nothing();
   }
@@ -283,8 +322,8 @@ class ResidualBrackets {
       }
       if (!ended.ok()) return ended.status();
       auto found = settle(chosen, low, high, from, to);
-      if (!found.ok() || *found) return found;
-      search_->look_closer();
+      if (!found.ok() || *found || held_low_ || held_high_) return found;
+      if (!search_->look_closer()) break;
     }
     return nothing();
   }
@@ -304,7 +343,14 @@ class ResidualBrackets {
                                            double from, double to) {
     auto pairs = search_->pairs_of(chosen, chosen.size());
     if (!pairs.ok()) return pairs.status();
-    return proof_.settle(*pairs, low, high, from, to);
+    auto found = proof_.settle(*pairs, low, high, from, to);
+    if (!found.ok() || *found) return found;
+    const auto held = [&](double end) {
+      return end != 0 && end != counter_.origin() && proof_.held_by_one(*pairs, end);
+    };
+    held_low_ = low && held(from);
+    held_high_ = held(to);
+    return found;
   }
 
   std::vector<Candidate> inside(std::initializer_list<const Candidates*> sides, double from,
@@ -313,7 +359,9 @@ class ResidualBrackets {
     for (const Candidates* side : sides) {
       for (const Candidate& candidate : side->list) {
         const double shift = base_->shift_of(candidate.theta);
-        if (candidate.close && shift > from && shift < to) chosen.push_back(candidate);
+        const bool near =
+            shift > from - kNearestEnd * std::fabs(from) && shift < to + kNearestEnd * std::fabs(to);
+        if (candidate.close && near) chosen.push_back(candidate);
       }
     }
     return chosen;
@@ -382,7 +430,7 @@ class ResidualBrackets {
       // An estimate that rounding moved out of its place makes an end too far in: there are more behind it.
       const auto number = static_cast<Offset>(std::min(many, wanted));
       if (*settled && *(*settled)->complete->count >= number) return settled;
-      search_->look_closer();
+      if (!search_->look_closer()) break;
     }
     return nothing();
   }
@@ -480,7 +528,9 @@ class ResidualBrackets {
   ResidualProof proof_;
   std::optional<SpectralBase> base_;
   std::optional<ModeSearch> search_;
-  double start_ = 0;   ///< the shift of the base that all began with
+  double start_ = 0;  ///< the shift of the base that all began with
+  /// An end of the range last sought lies in the interval of a value.
+  bool held_low_ = false, held_high_ = false;
   bool near_ = false;  ///< a base near the values was made, or tried
 };
 

@@ -95,12 +95,13 @@ bool ModeSearch::squares() const {
   return !strict_ && !centre_ && !request_.bracket.want_modes;
 }
 
-void ModeSearch::look_closer() {
+bool ModeSearch::look_closer() {
   if (squares()) {
     strict_ = true;
-  } else {
-    lanczos_->inject();
+    return true;
   }
+  if (!lanczos_->whole()) lanczos_->inject();
+  return !lanczos_->whole();
 }
 
 void ModeSearch::start(Index wanted, const KeptValues& keep) {

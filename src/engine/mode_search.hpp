@@ -48,8 +48,8 @@ class ModeSearch {
   Result<std::vector<ResidualPair>> pairs_of(const std::vector<Candidate>& list, std::size_t many);
 
   /// When values were missed: residuals must be small by themselves from now on, or, when that was asked
-  /// already, a block of fresh random vectors joins the space.
-  void look_closer();
+  /// already, a block of fresh random vectors joins the space. False when the space is everything there is.
+  bool look_closer();
 
   /// Whether the first `wanted` of `found`, of one side or of both, are so hard to tell apart from here that
   /// a base near them pays: they lie close together, many steps were taken, and the first is known well

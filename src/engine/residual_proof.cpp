@@ -16,6 +16,31 @@ Status too_many() {
       kMachineOrProgram);
 }
 
+/// Leaves out the outermost `many` of `values`, which are ordered away from `end`: they lie beyond it.
+/// `sign`: 1 for an upper end. An interval that holds the end stops there. False where intervals say
+/// otherwise.
+bool leave_out(std::vector<FoundValues>& values, double end, Offset many, int sign) {
+  const auto inner_end = [&](const FoundValues& v) { return sign > 0 ? v.low : -v.high; };
+  const auto outer_end = [&](const FoundValues& v) { return sign > 0 ? v.high : -v.low; };
+  const double reach = sign * end;
+  while (!values.empty() && outer_end(values.back()) > reach) {
+    FoundValues& last = values.back();
+    const Offset beyond = inner_end(last) >= reach ? last.count : std::min<Offset>(many, last.count);
+    if (beyond > many) return false;
+    many -= beyond;
+    last.count -= static_cast<Index>(beyond);
+    if (last.count == 0) {
+      values.pop_back();
+      continue;
+    }
+    (sign > 0 ? last.high : last.low) = end;
+    last.value = std::clamp(last.value, last.low, last.high);
+    if (static_cast<Index>(last.modes.size()) > last.count)
+      last.modes.clear();  // whose they are is not known
+  }
+  return many == 0;
+}
+
 /// Ends of an interval by their distance from 0.
 double inner(const FoundValues& values) {
   return values.low <= 0 && values.high >= 0 ? 0 : std::min(std::fabs(values.low), std::fabs(values.high));
@@ -88,6 +113,15 @@ Result<std::optional<CountFact>> ResidualProof::remember(const CountFact& fact) 
   counts_.add(fact);
   if (counts_.contradictions().empty()) return std::optional(fact);
   return Status::internal(std::string("certified counts contradict each other: ") + kMachineOrProgram);
+}
+
+bool ResidualProof::held_by_one(const std::vector<ResidualPair>& pairs, double end) const {
+  for (const EigenvalueGroup& group : disjoint_groups(base_->base, pairs)) {
+    if (!(group.low * group.high > 0)) continue;
+    const auto [low, high] = values_of(group);
+    if (low <= end && high >= end) return true;
+  }
+  return false;
 }
 
 GroupSides ResidualProof::groups_inside(const std::vector<ResidualPair>& pairs, double from,
@@ -195,6 +229,30 @@ FoundRange nearest_of(FoundRange all, Index wanted) {
   return all;
 }
 
+Result<FoundRange> cut_by_counts(FoundRange all, const std::optional<CountFact>& outer_low,
+                                 const CountFact& outer_high, const std::optional<CountFact>& low,
+                                 const CountFact& high) {
+  const CountedRange whole = *all.complete;
+  CountedRange range = counted_range(low, high, low ? low->shift : whole.from, high.shift);
+  if (!leave_out(all.values, high.shift, outer_high.least - high.least, 1)) return too_many();
+  if (low) {
+    std::reverse(all.values.begin(), all.values.end());
+    if (!leave_out(all.values, low->shift, low->least - outer_low->least, -1)) return too_many();
+    std::reverse(all.values.begin(), all.values.end());
+  }
+  Index number = 0;
+  for (FoundValues& values : all.values) {
+    number += values.count;
+    if (range.level != Level::kStatistical) continue;
+    values.level = Level::kStatistical;
+    values.failure_probability += range.failure_probability.value_or(0);
+  }
+  if (!range.count || number != *range.count) return too_many();
+  weaken(range, whole.level, whole.failure_probability.value_or(0));
+  all.complete = range;
+  return all;
+}
+
 FoundRange cut_to(FoundRange all, double from, double to, Index& on_ends) {
   on_ends = 0;
   CountedRange& range = *all.complete;
@@ -212,13 +270,14 @@ FoundRange cut_to(FoundRange all, double from, double to, Index& on_ends) {
     } else {
       lowest = std::min(lowest, values.low);
       highest = std::max(highest, values.high);
-      if (values.low <= from || values.high >= to) on_ends += values.count;
+      if ((range.from < from && values.low <= from) || (range.to > to && values.high >= to))
+        on_ends += values.count;
       number += values.count;
       kept.push_back(std::move(values));
     }
   }
-  range.from = lowest > from ? from : shortest_between(before, lowest);
-  range.to = highest < to ? to : shortest_between(highest, behind);
+  if (range.from < from) range.from = lowest > from ? from : shortest_between(before, lowest);
+  if (range.to > to) range.to = highest < to ? to : shortest_between(highest, behind);
   range.count = number;
   all.values = std::move(kept);
   return all;

@@ -37,6 +37,9 @@ class ResidualProof {
   /// then all that is left to show. Otherwise it is counted.
   Result<std::optional<CountFact>> count_expecting(double shift, Offset expected);
 
+  /// Whether the interval of a value holds `end`: it cannot tell on which side the value lies.
+  bool held_by_one(const std::vector<ResidualPair>& pairs, double end) const;
+
   /// Those whose values lie between `from` and `to` for certain.
   GroupSides groups_inside(const std::vector<ResidualPair>& pairs, double from, double to) const;
 
@@ -66,6 +69,14 @@ FoundRange nearest_of(FoundRange all, Index wanted);
 /// Of a complete range the values that lie, or may lie, between `from` and `to`, both inside it. The range
 /// ends there again unless one may lie on either side: then it ends behind that. `on_ends`: how many may.
 FoundRange cut_to(FoundRange all, double from, double to, Index& on_ends);
+
+/// Of a complete range with exact counts at its ends, `outer_low` and `outer_high`, what lies between two
+/// counts inside it, exact as well: they tell on which side of an end a value lies whose interval holds that
+/// end. A fault where the intervals and the counts contradict each other. An end without a count is that of
+/// both ranges.
+Result<FoundRange> cut_by_counts(FoundRange all, const std::optional<CountFact>& outer_low,
+                                 const CountFact& outer_high, const std::optional<CountFact>& low,
+                                 const CountFact& high);
 
 /// A complete range that ends at 0, and one that begins there.
 FoundRange joined(FoundRange below, FoundRange above);

@@ -11,7 +11,9 @@
 namespace stanchion {
 namespace {
 
-constexpr Index kDense = 320;  ///< up to so many rows the whole space is taken
+/// Up to so many rows the whole space is taken; and up to so many where the basis may take half of them, for
+/// from there on one eigenvalue problem of that size takes less time than steps and restarts.
+constexpr Index kDense = 320, kDenseForMany = 1024;
 constexpr Offset kPieces =
     16;  ///< of the rows, each with sums of its own: the same for any number of threads
 
@@ -74,7 +76,7 @@ BlockLanczos::BlockLanczos(Operator apply, Index rows, Index most_columns, std::
       next_(at(Offset{rows} * kV)),
       coupling_(kV * kV, 0.0) {
   use_single_threaded_blas(pool.size());
-  if (rows <= kDense) {
+  if (rows <= kDense || (rows <= kDenseForMany && 2 * most_columns >= rows)) {
     take_whole_space();
     return;
   }
@@ -85,7 +87,7 @@ BlockLanczos::BlockLanczos(Operator apply, Index rows, Index most_columns, std::
 /// Small: the basis is the unit vectors, and the projected operator the operator itself.
 void BlockLanczos::take_whole_space() {
   most_columns_ = columns_ = rows_;
-  exhausted_ = true;
+  exhausted_ = whole_ = true;
   basis_ = Buffer<double>(Offset{rows_} * rows_, 0.0);
   projected_.assign(at(Offset{rows_} * rows_), 0.0);
   for (Index first = 0; first < rows_; first += kV) {
@@ -292,6 +294,7 @@ void BlockLanczos::inject() {
 }
 
 const std::vector<RitzValue>& BlockLanczos::ritz_values() {
+  if (whole_ && !ritz_.empty()) return ritz_;
   const Index m = columns_;
   rotation_.resize(at(Offset{m} * m));
   for (Index j = 0; j < m; ++j) {
@@ -306,7 +309,7 @@ const std::vector<RitzValue>& BlockLanczos::ritz_values() {
   if (!symmetric_eigen(m, rotation_, values)) return ritz_;
   for (Index j = 0; j < m; ++j) {
     double sum = 0;
-    const double* last = rows_ <= kDense ? nullptr : rotation_.data() + Offset{j} * m + (m - kV);
+    const double* last = whole_ ? nullptr : rotation_.data() + Offset{j} * m + (m - kV);
     for (Index k = 0; last != nullptr && k < kV; ++k) {
       double entry = 0;
       for (Index l = k; l < kV; ++l) entry += coupling_[at(l * kV + k)] * last[l];

@@ -35,8 +35,9 @@ class BlockLanczos {
  public:
   using Operator = std::function<void(double* block)>;  ///< in place, kBlockVectors doubles a row
 
-  /// `most_columns`: of the basis, a multiple of kBlockVectors, at least six blocks. Up to 320 rows the whole
-  /// space is taken at once. `seed` draws the first block. Throws std::bad_alloc. Memory: most_columns + 16
+  /// `most_columns`: of the basis, a multiple of kBlockVectors, at least six blocks. Up to 320 rows, and up
+  /// to 1,024 where the basis may take half of them, the whole space is taken at once. `seed` draws the first
+  /// block. Throws std::bad_alloc. Memory: most_columns + 16
   /// doubles a row.
   BlockLanczos(Operator apply, Index rows, Index most_columns, std::uint64_t seed, ThreadPool& pool);
 
@@ -48,12 +49,15 @@ class BlockLanczos {
   /// A block of fresh random vectors joins the space: for what the first one may have missed.
   void inject();
 
-  /// Approximations from the space so far, by size of the value, largest first. Cost: columns()^3.
+  /// Approximations from the space so far, by size of the value, largest first. Cost: columns()^3, of a whole
+  /// space once.
   const std::vector<RitzValue>& ritz_values();
 
   /// Up to eight approximate eigenvectors as a block, columns beyond them zero. Call ritz_values() before.
   std::vector<double> vectors(const std::vector<RitzValue>& chosen) const;
 
+  /// The space is everything there is: nothing can have been missed.
+  bool whole() const { return whole_; }
   Index columns() const { return columns_; }
   Index steps() const { return steps_; }
 
@@ -80,7 +84,7 @@ class BlockLanczos {
   std::vector<double> coupling_;   ///< A Q_last = Q (...) + next coupling, 8 x 8
   std::vector<double> rotation_;   ///< eigenvectors of the projected operator
   std::vector<RitzValue> ritz_;
-  bool exhausted_ = false;
+  bool exhausted_ = false, whole_ = false;
 };
 
 }  // namespace stanchion
