@@ -1,7 +1,5 @@
 #include "order/dissection.hpp"
 
-#include <metis.h>
-
 #include <algorithm>
 #include <array>
 #include <cstdlib>
@@ -12,48 +10,29 @@
 
 #include "base/threads.hpp"
 #include "order/components.hpp"
+#include "order/metis_graph.hpp"
 #include "order/minimum_degree.hpp"
+#include "order/separator.hpp"
 
 namespace stanchion {
 namespace {
 
-constexpr Index kWholeUpTo = 3'000;  // vertices that one call of METIS orders without a cut of ours
-constexpr int kLevels = 4;     // of cuts: 16 parts keep as many threads busy; thin parts are cut further
+constexpr Index kWholeUpTo = 2'000;         // vertices that are ordered without a cut of ours
+constexpr Index kScatteredWholeUpTo = 250;  // minimum degree breaks ties badly where numbers are scattered
+constexpr int kLevels =
+    4;  // of cuts: 16 parts keep as many threads busy; thin and quick parts are cut further
 constexpr double kThin = 1.5;  // most (separator vertices)^2 a vertex of a surface; bodies have 2 to 50
-
-/// A graph in METIS's index width.
-struct MetisGraph {
-  explicit MetisGraph(const Graph& graph)
-      : vertices(graph.vertices),
-        start(graph.start.begin(), graph.start.end()),
-        adjacency(graph.adjacency.begin(), graph.adjacency.end()),
-        weight(graph.weight.begin(), graph.weight.end()) {
-    METIS_SetDefaultOptions(options.data());
-    options[METIS_OPTION_NUMBERING] = 0;
-    options[METIS_OPTION_COMPRESS] =
-        0;  // the graph is compressed already, and only then are weights honoured
-    options[METIS_OPTION_CCORDER] = 0;
-    options[METIS_OPTION_SEED] = 42;
-  }
-
-  idx_t vertices;
-  std::vector<idx_t> start, adjacency, weight;
-  std::array<idx_t, METIS_NOPTIONS> options;
-};
 
 /// A part of the graph, to fill the positions from `place` on.
 struct Part {
   Graph graph;
   std::vector<Index> vertices;  ///< in the whole graph, ascending
   Index place = 0;
-  bool whole = false;  ///< not to be cut further
-  bool thin = false;   ///< a piece of a surface or a line: the cut that made it was short
+  bool whole = false;      ///< not to be cut further
+  bool thin = false;       ///< a piece of a surface or a line: the cut that made it was short
+  bool quick = false;      ///< a cut costs little: the one that made it was found on a graph of cliques
+  bool scattered = false;  ///< neighbours have far-off numbers
 };
-
-Status out_of_memory() {
-  return Status::resource_limit("ordering-memory", "nested dissection ran out of memory", "",
-                                "free memory or use a smaller model");
-}
 
 /// Orders a part by METIS and writes its vertices to their positions.
 Status order_whole(const Part& part, Buffer<Index>& vertex_at) {
@@ -61,7 +40,7 @@ Status order_whole(const Part& part, Buffer<Index>& vertex_at) {
   std::vector<idx_t> order(part.vertices.size()), inverse(part.vertices.size());
   const int status = METIS_NodeND(&graph.vertices, graph.start.data(), graph.adjacency.data(),
                                   graph.weight.data(), graph.options.data(), order.data(), inverse.data());
-  if (status != METIS_OK) return out_of_memory();
+  if (status != METIS_OK) return metis_out_of_memory();
   for (std::size_t k = 0; k < order.size(); ++k) {
     vertex_at[part.place + static_cast<Index>(k)] = part.vertices[static_cast<std::size_t>(order[k])];
   }
@@ -93,26 +72,33 @@ Status order_thin(const Graph& whole, const Part& part, Buffer<Index>& local, Bu
   return {};
 }
 
+/// Whether the numbers of neighbours differ by a tenth of all on the mean: by a third in random numbering,
+/// and by the square root of the vertices where a surface is numbered row by row.
+bool is_scattered(const Graph& graph) {
+  Offset distances = 0;
+  for (Index v = 0; v < graph.vertices; ++v) {
+    for (Offset e = graph.start[v]; e < graph.start[Offset{v} + 1]; ++e) {
+      distances += std::abs(graph.adjacency[e] - v);
+    }
+  }
+  return 10 * distances > graph.adjacency.size() * graph.vertices;
+}
+
 /// What a cut leaves: both sides, or the part itself as a whole one when there is no cut worth making.
 /// The separator's positions are the part's last.
 Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
-  MetisGraph graph(part.graph);
-  std::vector<idx_t> side(part.vertices.size());
-  idx_t separator_weight = 0;
-  const int status =
-      METIS_ComputeVertexSeparator(&graph.vertices, graph.start.data(), graph.adjacency.data(),
-                                   graph.weight.data(), graph.options.data(), &separator_weight, side.data());
-  if (status != METIS_OK) return out_of_memory();
+  auto separation = separate(part.graph);
+  if (!separation.ok()) return separation.status();
   std::array<std::vector<Index>, 3> chosen;
-  for (std::size_t k = 0; k < side.size(); ++k) {
-    chosen[static_cast<std::size_t>(side[k])].push_back(static_cast<Index>(k));
+  for (std::size_t k = 0; k < separation->side.size(); ++k) {
+    chosen[static_cast<std::size_t>(separation->side[k])].push_back(static_cast<Index>(k));
   }
   if (chosen[0].empty() || chosen[1].empty()) {
     part.whole = true;
     left_over.push_back(std::move(part));
     return {};
   }
-  const auto separator = static_cast<double>(chosen[2].size());
+  const auto separator = static_cast<double>(chosen[kSeparator].size());
   const bool thin = separator * separator <= kThin * part.graph.vertices;
   Index place = part.place;
   for (const std::size_t s : {0, 1}) {
@@ -125,10 +111,12 @@ Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
     half.graph = subgraph(part.graph, local, chosen[s].data(), static_cast<Index>(chosen[s].size()));
     half.place = place;
     half.thin = thin;
+    half.quick = separation->by_cliques;
+    half.scattered = is_scattered(half.graph);
     place += half.graph.vertices;
     left_over.push_back(std::move(half));
   }
-  for (const Index v : chosen[2]) vertex_at[place++] = part.vertices[static_cast<std::size_t>(v)];
+  for (const Index v : chosen[kSeparator]) vertex_at[place++] = part.vertices[static_cast<std::size_t>(v)];
   return {};
 }
 
@@ -151,7 +139,8 @@ Status for_all(ThreadPool* pool, std::size_t pieces, const Work& work) {
 }
 
 bool to_be_cut(const Part& part, int level) {
-  return !part.whole && part.graph.vertices > kWholeUpTo && (level < kLevels || part.thin);
+  const Index whole_up_to = part.thin && part.scattered ? kScatteredWholeUpTo : kWholeUpTo;
+  return !part.whole && part.graph.vertices > whole_up_to && (level < kLevels || part.thin || part.quick);
 }
 
 bool try_generator() {

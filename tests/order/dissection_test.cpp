@@ -9,6 +9,7 @@
 #include <vector>
 
 #include "order/components.hpp"
+#include "order/element_grid.hpp"
 #include "order/quotient_graph.hpp"
 #include "support/generators.hpp"
 
@@ -50,8 +51,12 @@ TEST(ThreadRandom, HasAStateOfItsOwnInEachThread) {
 }
 
 TEST(Dissection, IsTheSameForAnyNumberOfThreads) {
-  for (const Index depth : {1, 12}) {
-    const Graph graph = grid(160, depth == 1 ? 140 : 11, depth);
+  std::vector<Graph> graphs;
+  graphs.push_back(grid(160, 140, 1));
+  graphs.push_back(grid(160, 11, 12));
+  graphs.push_back(test::element_grid(160, 140, 1));
+  graphs.push_back(test::element_grid(160, 11, 12));
+  for (const Graph& graph : graphs) {
     const auto alone = nested_dissection(graph, 1);
     ASSERT_TRUE(alone.ok());
     std::vector<Index> order = as_vector(*alone);

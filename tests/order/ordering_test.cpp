@@ -4,12 +4,14 @@
 #include <metis.h>
 
 #include <array>
+#include <functional>
 #include <set>
 
 #include "order/brute_force.hpp"
 #include "order/column_counts.hpp"
 #include "order/components.hpp"
 #include "order/dissection.hpp"
+#include "order/element_grid.hpp"
 #include "order/elimination_tree.hpp"
 #include "order/minimum_degree.hpp"
 #include "specimen/specimen.hpp"
@@ -126,21 +128,30 @@ double flops_of_metis(const Graph& graph) {
   return sum / 3;
 }
 
-/// METIS's orders as the yardstick. Its seeds move one order by 5 to 10 %, hence means; minimum degree of the
-/// last parts without what surrounds them needs 25 % more on surfaces.
+/// METIS's orders as the yardstick. Its seeds move one order by 5 to 10 %, hence means. On surfaces minimum
+/// degree of the last parts needs 25 % more without what surrounds them, and 30 % more where parts of 2,000
+/// vertices numbered at random are left to it.
 TEST(Orderings, NeedLittleMoreWorkThanMetis) {
   using Box = std::array<Index, 3>;
   const std::vector<Box> surfaces{{130, 120, 1}, {110, 100, 1}, {150, 90, 1}, {1200, 20, 1}, {95, 95, 1}};
   const std::vector<Box> bodies{{60, 50, 4}, {22, 21, 20}, {30, 15, 15}, {18, 18, 18}};
-  for (const auto& boxes : {surfaces, bodies}) {
-    double ratios = 0;
-    for (const auto& [nx, ny, nz] : boxes) {
-      const Graph graph = graph_of(test::laplacian(nx, ny, nz));
-      const auto ours = nested_dissection(graph, 2);
-      ASSERT_TRUE(ours.ok());
-      ratios += flops(graph, *ours) / flops_of_metis(graph);
+  Random random(16);
+  using Make = std::function<Graph(Index, Index, Index)>;
+  const std::vector<Make> kinds{
+      [](Index nx, Index ny, Index nz) { return graph_of(test::laplacian(nx, ny, nz)); },
+      [](Index nx, Index ny, Index nz) { return test::element_grid(nx, ny, nz); },
+      [&](Index nx, Index ny, Index nz) { return test::element_grid(random, nx, ny, nz); }};
+  for (const Make& make : kinds) {
+    for (const auto& boxes : {surfaces, bodies}) {
+      double ratios = 0;
+      for (const auto& [nx, ny, nz] : boxes) {
+        const Graph graph = make(nx, ny, nz);
+        const auto ours = nested_dissection(graph, 2);
+        ASSERT_TRUE(ours.ok());
+        ratios += flops(graph, *ours) / flops_of_metis(graph);
+      }
+      EXPECT_LT(ratios / static_cast<double>(boxes.size()), 1.12);
     }
-    EXPECT_LT(ratios / static_cast<double>(boxes.size()), 1.12);
   }
 }
 
