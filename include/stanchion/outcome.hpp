@@ -76,8 +76,8 @@ struct ConstrainedOutcome {
   std::optional<std::pair<Index, Index>> negative_range;
   Backing rank_backing;     ///< of `rank` and `redundant`
   Backing inertia_backing;  ///< of `inertia` or `negative_range`: the weakest of what they follow from
-  std::vector<Index>
-      redundant_equations;  ///< multipliers, from 1 as in the files, whose constraint repeats another
+  std::vector<Index> redundant_equations;  ///< multipliers, from 1 as in the files, whose constraint follows
+                                           ///< exactly from others
 };
 
 struct CheckOutcome {

@@ -4,6 +4,8 @@
 #include <cmath>
 #include <map>
 
+#include "engine/exact_dependence.hpp"
+
 namespace stanchion {
 namespace {
 
@@ -71,6 +73,21 @@ std::vector<char> repeated_rows(const std::vector<ConstraintRow>& rows) {
   return repeated;
 }
 
+/// Marks rows that follow exactly from others that are not marked.
+void mark_dependent(const std::vector<ConstraintRow>& rows, Index columns, std::vector<char>& repeated) {
+  constexpr Offset kMostSteps = 100'000'000;  // some tenths of a second
+  std::vector<SparseColumn> vectors;
+  std::vector<std::size_t> number;
+  for (std::size_t m = 0; m < rows.size(); ++m) {
+    if (repeated[m]) continue;
+    vectors.emplace_back();
+    number.push_back(m);
+    for (const auto& [column, value] : rows[m]) vectors.back().push_back({column, value});
+  }
+  const std::vector<char> dependent = exactly_dependent(vectors, columns, kMostSteps);
+  for (std::size_t k = 0; k < number.size(); ++k) repeated[number[k]] = dependent[k];
+}
+
 /// [I B^T; B 0] on the rows kept and the columns they touch.
 SymmetricMatrix bordered_identity(const std::vector<ConstraintRow>& rows, const std::vector<char>& repeated) {
   std::map<Index, Index> column_number;
@@ -132,7 +149,8 @@ Result<ConstraintRank> certify_constraint_rank(const ModelInput& model, const Re
   }
   rank.most = rank.multipliers;
   if (!rank.bordered || summed) return rank;
-  const std::vector<char> repeated = repeated_rows(constraints.rows);
+  std::vector<char> repeated = repeated_rows(constraints.rows);
+  mark_dependent(constraints.rows, model.stiffness.rows, repeated);
   for (std::size_t m = 0; m < multipliers.size(); ++m) {
     if (repeated[m]) rank.repeated.push_back(multipliers[m]);
   }

@@ -13,14 +13,14 @@ struct ConstraintRank {
   Index least = 0, most = 0;  ///< the rank lies between; equal when known
   Backing backing;            ///< of that statement
   std::vector<Index>
-      repeated;          ///< equations of multipliers whose row of B is an exact multiple of an earlier one
+      repeated;          ///< equations of multipliers whose row of B follows exactly from those of others
   bool bordered = true;  ///< false: multipliers act on each other, the theory below does not apply
 };
 
-/// Certifies the rank of the constraint rows. Exact multiples of earlier rows are found and set aside first,
-/// for no factorization in floating point can prove a matrix rank deficient. A is the stiffness of `model`
-/// with what is added; where something is added to the constraint rows themselves their sum is not formed and
-/// the rank is not known.
+/// Certifies the rank of the constraint rows. Rows that follow exactly from others are found and set aside
+/// first, for no factorization in floating point can prove a matrix rank deficient. A is the stiffness of
+/// `model` with what is added; where something is added to the constraint rows themselves their sum is not
+/// formed and the rank is not known.
 Result<ConstraintRank> certify_constraint_rank(const ModelInput& model, const Request& request,
                                                const RunContext& context, ThreadPool& pool, Outcome& outcome);
 

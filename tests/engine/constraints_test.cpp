@@ -34,6 +34,49 @@ TEST(Constraints, RepeatedConstraintCountsByRankNotByNumber) {
   EXPECT_EQ(on.inertia_backing.level, Level::kProved);
 }
 
+TEST(Constraints, ARingOfTiesHasItsRankProved) {
+  // Ties a-b, b-c, c-a on K = diag(1, 2, 3, -1): rank 2 (the cycle space of a triangle has dimension 1); on
+  // the constraints a = b = c, so Z^T K Z = diag(6, -1).
+  const Outcome outcome = check_with_multipliers(from_triplets(7, {{0, 0, 1},
+                                                                   {1, 1, 2},
+                                                                   {2, 2, 3},
+                                                                   {3, 3, -1},
+                                                                   {4, 0, 0.1},
+                                                                   {4, 1, -0.1},
+                                                                   {5, 1, 3},
+                                                                   {5, 2, -3},
+                                                                   {6, 2, 7e9},
+                                                                   {6, 0, -7e9}}),
+                                                 4);
+  const ConstrainedOutcome& on = *outcome.check->constrained;
+  EXPECT_EQ(on.rank, 2);
+  EXPECT_EQ(on.redundant, 1);
+  EXPECT_EQ(on.redundant_equations.size(), 1U);
+  EXPECT_EQ(on.rank_backing.level, Level::kProved);
+  ASSERT_TRUE(on.inertia);
+  EXPECT_EQ(on.inertia->negative, 1);
+  EXPECT_EQ(on.inertia->positive, 1);
+  EXPECT_EQ(on.inertia->zero, 0);
+}
+
+TEST(Constraints, ARingThatMissesByOneBitIsNotCalledRedundant) {
+  const double off = 3 * (1 + 0x1p-52);
+  const Outcome outcome = check_with_multipliers(from_triplets(7, {{0, 0, 1},
+                                                                   {1, 1, 2},
+                                                                   {2, 2, 3},
+                                                                   {3, 3, -1},
+                                                                   {4, 0, 1},
+                                                                   {4, 1, -1},
+                                                                   {5, 1, 3},
+                                                                   {5, 2, -3},
+                                                                   {6, 2, 3},
+                                                                   {6, 0, -off}}),
+                                                 4);
+  const ConstrainedOutcome& on = *outcome.check->constrained;
+  EXPECT_TRUE(on.redundant_equations.empty());
+  EXPECT_NE(on.redundant, 1);
+}
+
 TEST(Constraints, RankAndInertiaAreBackedEachOnItsOwn) {
   Certificate proved, statistical;
   proved.level = Level::kProved;
@@ -92,7 +135,7 @@ TEST(Constraints, IndependentOnesNeedNoMore) {
   EXPECT_EQ(outcome.check->constrained->inertia->positive, 90);
 }
 
-TEST(Constraints, AnExactMultipleIsRedundantASumIsOnlyARange) {
+TEST(Constraints, WhatFollowsExactlyIsRedundantWhatFollowsNearlyIsOnlyARange) {
   std::vector<Triplet> entries;
   for (Index i = 0; i < 6; ++i) entries.push_back({i, i, 1});
   entries.insert(entries.end(), {{6, 0, 1}, {6, 1, -1}, {7, 0, -2}, {7, 1, 2}});  // row 7 is -2 times row 6
@@ -101,10 +144,15 @@ TEST(Constraints, AnExactMultipleIsRedundantASumIsOnlyARange) {
   EXPECT_EQ(multiple.check->constrained->inertia->positive, 5);
   entries.insert(entries.end(), {{8, 1, 1}, {8, 2, -1}, {9, 0, 1}, {9, 2, -1}});  // row 9 = row 6 + row 8
   const Outcome sum = check_with_multipliers(from_triplets(10, entries), 6);
-  EXPECT_FALSE(sum.check->constrained->rank);
-  ASSERT_TRUE(sum.check->constrained->negative_range);
-  EXPECT_LE(sum.check->constrained->negative_range->first, 0);
-  EXPECT_GE(sum.check->constrained->negative_range->second, 0);
+  EXPECT_EQ(sum.check->constrained->rank, 2);
+  EXPECT_EQ(sum.check->constrained->inertia->positive, 4);
+  // 1/3 of row 6 and 1.1 of row 8, but for the rounding of the sum in the middle.
+  entries.insert(entries.end(), {{10, 0, 1.0 / 3}, {10, 1, 1.1 - 1.0 / 3}, {10, 2, -1.1}});
+  const Outcome nearly = check_with_multipliers(from_triplets(11, entries), 6);
+  EXPECT_FALSE(nearly.check->constrained->rank);
+  ASSERT_TRUE(nearly.check->constrained->negative_range);
+  EXPECT_LE(nearly.check->constrained->negative_range->first, 0);
+  EXPECT_GE(nearly.check->constrained->negative_range->second, 0);
 }
 
 TEST(Constraints, WhatIsAddedToTheStructureLeavesTheRankAlone) {
