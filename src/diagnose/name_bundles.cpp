@@ -3,6 +3,7 @@
 
 #include "diagnose/bundle_judge.hpp"
 #include "diagnose/bundle_merge.hpp"
+#include "diagnose/distinct.hpp"
 #include "diagnose/naming.hpp"
 #include "diagnose/purify.hpp"
 #include "diagnose/shares.hpp"
@@ -160,8 +161,7 @@ class BundleNamer {
         if (number != kNoNode) found.push_back(number);
       }
     }
-    std::sort(found.begin(), found.end());
-    found.erase(std::unique(found.begin(), found.end()), found.end());
+    make_distinct(found);
     if (found.empty()) return "";
     std::string text = found.size() == 1 ? "node " : "nodes ";
     const std::size_t shown = found.size() <= kShown + 1 ? found.size() : kShown;

@@ -1,5 +1,4 @@
-#include <algorithm>
-
+#include "diagnose/distinct.hpp"
 #include "diagnose/naming.hpp"
 #include "diagnose/shares.hpp"
 
@@ -27,8 +26,7 @@ void name_stiff_couplings(Evidence& e) {
       direction.nodes.push_back(std::move(entry));
     }
   }
-  std::sort(nodes.begin(), nodes.end());
-  nodes.erase(std::unique(nodes.begin(), nodes.end()), nodes.end());
+  make_distinct(nodes);
   direction.moving_nodes = static_cast<Index>(nodes.size());
   direction.moving_rows = static_cast<Index>(couplings.size());
   direction.energy = 1;

@@ -5,6 +5,7 @@
 #include <numeric>
 #include <optional>
 
+#include "diagnose/distinct.hpp"
 #include "diagnose/naming.hpp"
 #include "diagnose/negative.hpp"
 #include "diagnose/negative_links.hpp"
@@ -84,8 +85,7 @@ class NegativeNamer {
     direction.moving_rows = count;
     std::vector<Index> nodes;
     for (const Index row : rows) nodes.push_back(s_.node_of[static_cast<std::size_t>(row)]);
-    std::sort(nodes.begin(), nodes.end());
-    nodes.erase(std::unique(nodes.begin(), nodes.end()), nodes.end());
+    make_distinct(nodes);
     direction.moving_nodes = static_cast<Index>(nodes.size());
     direction.nodes =
         ranked(s_, rows, std::vector<double>(rows.size(), 1.0 / static_cast<double>(count)), kShownShares);

@@ -1,6 +1,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "diagnose/distinct.hpp"
 #include "diagnose/naming.hpp"
 #include "diagnose/shares.hpp"
 
@@ -49,8 +50,7 @@ class NodeMotionNamer {
         share.push_back(motion->entry[r] * motion->entry[r] / direction.count);
       }
     }
-    std::sort(nodes.begin(), nodes.end());
-    nodes.erase(std::unique(nodes.begin(), nodes.end()), nodes.end());
+    make_distinct(nodes);
     direction.moving_nodes = static_cast<Index>(nodes.size());
     direction.moving_rows = static_cast<Index>(rows.size());
     direction.residual = 0;

@@ -6,6 +6,7 @@
 #include <optional>
 #include <unordered_map>
 
+#include "diagnose/distinct.hpp"
 #include "diagnose/small_eigen.hpp"
 
 namespace stanchion {
@@ -127,8 +128,7 @@ class SparseSearch {
       }
     }
     for (auto& patch : list) {
-      std::sort(patch.begin(), patch.end());
-      patch.erase(std::unique(patch.begin(), patch.end()), patch.end());
+      make_distinct(patch);
     }
     return list;
   }

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "diagnose/distinct.hpp"
 #include "diagnose/scattered.hpp"
 
 namespace stanchion {
@@ -44,8 +45,7 @@ class SparseBasis {
       const auto& here = meets_[static_cast<std::size_t>(at)];
       earlier.insert(earlier.end(), here.begin(), here.end());
     }
-    std::sort(earlier.begin(), earlier.end());
-    earlier.erase(std::unique(earlier.begin(), earlier.end()), earlier.end());
+    make_distinct(earlier);
     for (const Index one : earlier) {
       const SparseColumn& q = basis_[static_cast<std::size_t>(one)];
       double along = 0;

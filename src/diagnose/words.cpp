@@ -1,9 +1,10 @@
 #include "diagnose/words.hpp"
-#include "model/numbers.hpp"
 
 #include <fmt/format.h>
 
 #include <cctype>
+
+#include "model/numbers.hpp"
 
 namespace stanchion {
 namespace {

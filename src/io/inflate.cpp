@@ -1,11 +1,12 @@
 #include "io/inflate.hpp"
-#include "model/byte_size.hpp"
 
 #include <zlib.h>
 
 #include <algorithm>
 #include <limits>
 #include <vector>
+
+#include "model/byte_size.hpp"
 
 namespace stanchion {
 namespace {

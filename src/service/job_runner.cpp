@@ -1,5 +1,4 @@
 #include "service/job_runner.hpp"
-#include "model/byte_size.hpp"
 
 #include <fmt/format.h>
 #include <poll.h>
@@ -7,6 +6,9 @@
 
 #include <algorithm>
 #include <filesystem>
+
+#include "jobs/memory_need.hpp"
+#include "model/byte_size.hpp"
 
 namespace stanchion::service {
 namespace {
@@ -18,17 +20,10 @@ constexpr auto kPause = std::chrono::milliseconds(100);  // for want of disk or 
 constexpr auto kTellEvery = std::chrono::milliseconds(250);
 constexpr int kNiceness = 10;  // answering comes before computing
 
-/// The question about the same matrices that the forecast command can answer.
-JobRequest forecast_request(const JobRequest& request, const RequestRules& rules) {
-  JobRequest forecast = request;
-  forecast.command = "forecast";
+/// The question about the same matrices, as they stand, that the forecast command can answer.
+JobRequest forecast_without_options(const JobRequest& request, const RequestRules& rules) {
+  JobRequest forecast = forecast_request(request, rules);
   forecast.options.clear();
-  for (const CommandTable& table : rules.commands) {
-    if (table.name != "forecast") continue;
-    const auto unknown = [&table](const JobInput& input) { return table.find_key(input.key) == nullptr; };
-    forecast.inputs.erase(std::remove_if(forecast.inputs.begin(), forecast.inputs.end(), unknown),
-                          forecast.inputs.end());
-  }
   return forecast;
 }
 
@@ -349,7 +344,7 @@ Status JobRunner::launch(Prepared& prepared) {
   plan.threads = active.needs.threads;
   plan.niceness = kNiceness;
   if (active.forecasting) {
-    plan.arguments = arguments_of(forecast_request(prepared.request, parts_.rules));
+    plan.arguments = arguments_of(forecast_without_options(prepared.request, parts_.rules));
     plan.arguments.push_back(std::string("--json=../") + kForecastFile);
     plan.log = folder + "/forecast.txt";
   } else {
