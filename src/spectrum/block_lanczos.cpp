@@ -74,6 +74,7 @@ BlockLanczos::BlockLanczos(Operator apply, Index rows, Index most_columns, std::
       basis_(Offset{rows} * most_columns),
       projected_(at(Offset{most_columns} * most_columns), 0.0),
       next_(at(Offset{rows} * kV)),
+      image_(at(Offset{rows} * kV)),
       coupling_(kV * kV, 0.0) {
   use_single_threaded_blas(pool.size());
   if (rows <= kDense || (rows <= kDenseForMany && 2 * most_columns >= rows)) {
@@ -268,7 +269,10 @@ bool BlockLanczos::step(const KeptValues& keep) {
   }
   if (columns_ + kV > most_columns_) restart(keep);
   append(next_.data());
-  std::vector<double> block = next_;
+  std::vector<double>& block = image_;
+  for_pieces([&](Offset begin, Offset end, Offset) {
+    std::copy(next_.begin() + begin * kV, next_.begin() + end * kV, block.begin() + begin * kV);
+  });
   apply_(block.data());
   ++steps_;
   std::vector<double> coefficients;
@@ -282,7 +286,7 @@ bool BlockLanczos::step(const KeptValues& keep) {
     }
   }
   orthonormalise(block.data(), &coupling_);
-  next_ = std::move(block);
+  std::swap(next_, block);
   return true;
 }
 

@@ -81,6 +81,7 @@ class BlockLanczos {
   Buffer<double> basis_;           ///< most_columns_ doubles a row
   std::vector<double> projected_;  ///< Q^T A Q, most_columns_ x most_columns_, column-major
   std::vector<double> next_;       ///< orthonormal block that joins the basis at the next step
+  std::vector<double> image_;      ///< what the operator makes of it: memory from step to step
   std::vector<double> coupling_;   ///< A Q_last = Q (...) + next coupling, 8 x 8
   std::vector<double> rotation_;   ///< eigenvectors of the projected operator
   std::vector<RitzValue> ritz_;

@@ -92,7 +92,7 @@ ResidualWork::ResidualWork(DefiniteBase& base, const ShiftedMatrix& second)
       base_size_(absolute_norm(base.matrix(), base.pool())),
       second_size_(absolute_norm(second, base.pool())) {
   const std::size_t size = static_cast<std::size_t>(base.rows()) * kV;
-  for (Block* block : {&x_, &bx_, &cx_, &z_}) block->resize(size);
+  for (Block* block : {&x_, &bx_, &cx_}) block->resize(size);
 }
 
 void ResidualWork::multiply(const double* block) {
@@ -109,15 +109,16 @@ std::vector<ResidualPair> ResidualWork::pairs(const std::vector<double>& coordin
   const ColumnSums x_norm = norms(pool, x_), b_norm = norms(pool, bx_), c_norm = norms(pool, cx_);
   ColumnSums theta{};
   for (std::size_t v = 0; v < kV; ++v) theta[v] = energy[v] > 0 ? work[v] / energy[v] : 0;
-  for_ranges(pool, static_cast<Offset>(z_.size() / kV), kBlockRowsAPiece, [&](Offset begin, Offset end) {
+  Block& z = cx_;  // C x is not needed any more
+  for_ranges(pool, static_cast<Offset>(z.size() / kV), kBlockRowsAPiece, [&](Offset begin, Offset end) {
     for (std::size_t i = static_cast<std::size_t>(begin) * kV; i < static_cast<std::size_t>(end) * kV;
          i += kV) {
-      for (std::size_t v = 0; v < kV; ++v) z_[i + v] = cx_[i + v] - theta[v] * bx_[i + v];
+      for (std::size_t v = 0; v < kV; ++v) z[i + v] -= theta[v] * bx_[i + v];
     }
   });
-  const ColumnSums r_norm = norms(pool, z_);
-  base_.solve(z_.data());
-  const ColumnSums z_norm = norms(pool, z_), y_norm = norms(pool, coordinates);
+  const ColumnSums r_norm = norms(pool, z);
+  base_.solve(z.data());
+  const ColumnSums z_norm = norms(pool, z), y_norm = norms(pool, coordinates);
   std::vector<ResidualPair> pairs(static_cast<std::size_t>(count));
   for (std::size_t v = 0; v < pairs.size(); ++v) {
     ResidualPair& pair = pairs[v];
@@ -141,7 +142,7 @@ std::vector<ResidualPair> ResidualWork::pairs(const std::vector<double>& coordin
   pool.run(static_cast<Offset>(pairs.size()), [&](Offset column, int) {
     const auto v = static_cast<std::size_t>(column);
     pairs[v].coordinates = column_of(coordinates, v);
-    pairs[v].residual_coordinates = column_of(z_, v);
+    pairs[v].residual_coordinates = column_of(z, v);
     pairs[v].vector = column_of(x_, v);
   });
   return pairs;

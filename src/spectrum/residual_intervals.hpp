@@ -26,7 +26,7 @@ struct ResidualPair {
 
 /// B and C of a pencil with what residuals of many pairs need again and again: their sizes, and memory for
 /// eight vectors at a time. `base` and what `second` refers to outlive the object. Cost: a pass over each
-/// matrix; memory: nine blocks of eight vectors.
+/// matrix; memory: eight blocks of eight vectors.
 class ResidualWork {
  public:
   ResidualWork(DefiniteBase& base, const ShiftedMatrix& second);
@@ -49,7 +49,7 @@ class ResidualWork {
   const ShiftedMatrix& second_;
   AbsoluteNorm base_size_, second_size_;
   Buffer<double> product_memory_;
-  LongVector<double> x_, bx_, cx_, z_;
+  LongVector<double> x_, bx_, cx_;
 };
 
 /// Bound on ||X^T B X - I|| for the vectors `members` of `pairs`, each divided by its norm.

@@ -1,5 +1,6 @@
-// Ranges whose ends lie on a value, or closer to one than residual intervals tell. K = T^T D T and G = -T^T T with
-// T of integers: the values are the integers of D, whatever T is, and both matrices are exact in double precision.
+// Ranges whose ends lie on a value, or closer to one than residual intervals tell. K = T^T D T and G = -T^T T
+// with T of integers: the values are the integers of D, whatever T is, and both matrices are exact in double
+// precision.
 #include <gtest/gtest.h>
 
 #include <cmath>
