@@ -18,6 +18,9 @@ namespace {
 constexpr double kDefiniteGuess = 0x1p-40, kGeneralGuess = 0x1p-32;
 /// Where factors are thin, bounds are small, and eigenvalues lie close: a large c would leave some undecided.
 constexpr double kThinGuess = 0x1p-36;
+/// Where only the positive ones are counted a gap was chosen to count in, and room is better spent: larger to
+/// begin with, and again after a bound that was larger still.
+constexpr double kThinSideGuess = 0x1p-34, kSideMargin = 8.0;
 /// A shift of this share of the matrix lies amid the spectrum, where pivots grow and bounds with them, but
 /// eigenvalues lie apart by the norm over n on average: c may be that over kApart, up to kDeepGuess.
 constexpr double kDeepShare = 0x1p-5, kApart = 1024, kDeepGuess = 0x1p-24;
@@ -86,7 +89,8 @@ class OffsetScheme {
     if (definite) return kDefiniteGuess;
     deep_ = is_deep();
     if (deep_) return std::clamp(1 / (kApart * static_cast<double>(rows_)), kGeneralGuess, kDeepGuess);
-    return has_thin_factor(analysis_) ? kThinGuess : kGeneralGuess;
+    if (!has_thin_factor(analysis_)) return kGeneralGuess;
+    return options_.all_positive_but ? kThinSideGuess : kThinGuess;
   }
 
   double sharpen_above() const { return deep_ ? kSharpenDeepAbove : kSharpenAbove; }
@@ -172,7 +176,7 @@ class OffsetScheme {
       if (holds &&
           (below->negative <= *options_.all_positive_but || offset <= sharpen_above() * below->bound))
         break;
-      offset = kMargin * below->bound;
+      offset = (holds ? kMargin : kSideMargin) * below->bound;
     }
     if (found_.certificate.level == Level::kNone) give_up("no offset above the error bound was found");
     return found_;
