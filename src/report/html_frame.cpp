@@ -38,7 +38,7 @@ std::string html_page(const std::string& title, const std::optional<std::string>
       "<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n";
   html +=
       fmt::format("<title>{}</title>\n<style>{}</style></head>\n<body><main>\n", escaped(title), kHtmlStyle);
-  html += fmt::format("<header class=\"top\"><h1>{}</h1><p>{}{} {}, {}</p></header>\n", escaped(title),
+  html += fmt::format("<header class=\"top\"><h1>{}</h1><p>{}{} {}, {}</p></header>\n", path_to_html(title),
                       reference ? "Reference: " + escaped(*reference) + " · " : "", program_name(),
                       program_version(), escaped(command));
   return html + body +
@@ -108,17 +108,6 @@ std::string begin_table(const std::string& name, const std::string& kind, const 
 
 std::string end_table() {
   return "</tbody></table></div>\n";
-}
-
-std::string path_to_html(const std::string& path) {
-  std::string html;
-  for (std::size_t from = 0; from < path.size();) {
-    const std::size_t slash = path.find('/', from);
-    const std::size_t to = slash == std::string::npos ? path.size() : slash + 1;
-    html += escaped(path.substr(from, to - from)) + (to < path.size() ? "<wbr>" : "");
-    from = to;
-  }
-  return html;
 }
 
 }  // namespace stanchion

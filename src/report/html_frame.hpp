@@ -45,7 +45,4 @@ std::string command_to_html(const std::vector<std::string>& arguments);
 std::string begin_table(const std::string& name, const std::string& kind, const std::string& head);
 std::string end_table();
 
-/// A path that may go on in the next line after each folder.
-std::string path_to_html(const std::string& path);
-
 }  // namespace stanchion

@@ -77,16 +77,30 @@ std::string flowing(std::string_view text) {
 std::string headline(std::string_view text) {
   constexpr const char* kNoBreak = "\xC2\xA0";
   const auto word_at = [&](std::size_t from) { return text.substr(from, text.find(' ', from) - from); };
-  std::string bound(word_at(0));
+  const auto set = [](std::string_view word) {
+    return word.find('/') == word.npos ? flowing(word) : path_to_html(word);
+  };
   std::string_view before = word_at(0);
-  for (std::size_t at = bound.size(); at < text.size();) {
+  std::string bound = set(before);
+  for (std::size_t at = before.size(); at < text.size();) {
     const std::string_view word = word_at(at + 1);
     bound += stay_together(before, word) ? kNoBreak : " ";
-    bound += word;
+    bound += set(word);
     before = word;
     at += 1 + word.size();
   }
-  return flowing(bound);
+  return bound;
+}
+
+std::string path_to_html(std::string_view path) {
+  std::string html;
+  for (std::size_t from = 0; from < path.size();) {
+    const std::size_t slash = path.find('/', from);
+    const std::size_t to = slash == path.npos ? path.size() : slash + 1;
+    html += escaped(path.substr(from, to - from)) + (to < path.size() ? "<wbr>" : "");
+    from = to;
+  }
+  return html;
 }
 
 std::string escaped(std::string_view text) {

@@ -13,7 +13,11 @@ std::string escaped(std::string_view text);
 std::string flowing(std::string_view text);
 
 /// The same for large type, where lines are short: a number stays with the noun it counts ("6 zero
-/// directions" keeps "6 zero" together), and "node", "row", "column" or "step" with its number.
+/// directions" keeps "6 zero" together), and "node", "row", "column" or "step" with its number; paths as
+/// below.
 std::string headline(std::string_view text);
+
+/// A path that may go on in the next line after each folder.
+std::string path_to_html(std::string_view path);
 
 }  // namespace stanchion

@@ -11,10 +11,12 @@ class Outline(html.parser.HTMLParser):
     def __init__(self):
         super().__init__(convert_charrefs=True)
         self.open, self.text, self.attributes, self.tags, self.headings = [], [], [], [], []
+        self.word_goes_on = False  # after <wbr>
 
     def handle_starttag(self, tag, attrs):
         self.attributes += attrs
         self.tags.append(tag)
+        self.word_goes_on = tag == "wbr"
         if tag not in VOID:
             self.open.append(tag)
 
@@ -30,7 +32,11 @@ class Outline(html.parser.HTMLParser):
     def handle_data(self, data):
         if self.open and self.open[-1] == "style":
             return
-        self.text.append(data)
+        if self.word_goes_on and self.text:
+            self.text[-1] += data
+        else:
+            self.text.append(data)
+        self.word_goes_on = False
         if self.open and self.open[-1] == "h2":
             self.headings.append(data)
 

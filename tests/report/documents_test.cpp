@@ -155,6 +155,8 @@ TEST(Markup, NumbersStayWithWhatTheyCountInAHeadline) {
             "between 0 and 1.9, 4\xC2\xA0"
             "counted (node\xC2\xA0"
             "12, ux)");
+  EXPECT_EQ(headline("Step 3 (a/b.mtx) is <6 1e-9"),
+            "Step 3 (a/<wbr>b.mtx) is &lt;6 <span class=\"num\">1e-9</span>");
   EXPECT_EQ(headline(""), "");
   EXPECT_EQ(headline("a  b <3 "), "a  b &lt;3 ");
 }
