@@ -3,6 +3,7 @@
 
 #include <cstdio>
 #include <filesystem>
+#include <set>
 #include <unordered_map>
 
 #include "base/threads.hpp"
@@ -52,6 +53,7 @@ class BatchCommand : public Command {
   Result<int> merge(const std::vector<const ListedJob*>& jobs, BatchSummary& summary);
   Result<int> deliver(BatchSummary& summary);
   OutputOptions places() const;
+  void note_files_read(const std::vector<ListedJob>& jobs);
   Status open_summaries(const std::string& results);
 
   std::optional<std::string> jobs_, results_, shard_, memory_cap_, store_, store_size_, reports_,
@@ -59,6 +61,7 @@ class BatchCommand : public Command {
   std::vector<std::string> merge_;
   std::optional<std::int64_t> threads_, cpu_limit_;
   bool resume_ = false, retry_ = false, quiet_ = false;
+  std::vector<std::string> read_;  ///< no answer may take the place of these
   Targets targets_;
 };
 
@@ -198,6 +201,16 @@ OutputOptions BatchCommand::places() const {
   return output;
 }
 
+/// The list of jobs, the parts to merge, and every file that a job names.
+void BatchCommand::note_files_read(const std::vector<ListedJob>& jobs) {
+  std::set<std::string> read(merge_.begin(), merge_.end());
+  if (jobs_) read.insert(*jobs_);
+  for (const ListedJob& job : jobs) {
+    for (const JobInput& input : job.request.inputs) read.insert(input.path);
+  }
+  read_.assign(read.begin(), read.end());
+}
+
 /// Opens the summaries and removes older ones; `results` is where the results go, asked or not.
 Status BatchCommand::open_summaries(const std::string& results) {
   if (Status status = check_targets_differ(
@@ -205,15 +218,13 @@ Status BatchCommand::open_summaries(const std::string& results) {
       !status.ok()) {
     return status;
   }
-  std::vector<std::string> read = merge_;
-  read.push_back(*jobs_);
   for (const auto& [option, target, file] :
        {std::tuple{"--json", &json_, &targets_.json}, std::tuple{"--junit", &junit_, &targets_.junit}}) {
-    auto opened = open_target(option, *target, read);
+    auto opened = open_target(option, *target, read_);
     if (!opened.ok()) return opened.status();
     *file = std::move(*opened);
   }
-  if (Status status = check_not_read("--results", results_, {*jobs_}); !status.ok()) return status;
+  if (Status status = check_not_read("--results", results_, read_); !status.ok()) return status;
   for (const auto* file : {&targets_.json, &targets_.junit}) {
     if (*file) (*file)->remove_older();
   }
@@ -364,11 +375,10 @@ Result<int> BatchCommand::merge(const std::vector<const ListedJob*>& jobs, Batch
 /// What is named as a summary must not show an older run once this one is refused.
 void BatchCommand::refuse(const Status& why, const Call& call) {
   if (!targets_.opened) {
-    std::vector<std::string> read = merge_;
-    if (jobs_) read.push_back(*jobs_);
+    if (read_.empty()) note_files_read({});
     OutputOptions output = places();
     if (jobs_ && !results_) output.results = results_path(shard().ok() ? *shard() : Shard{});
-    open_for_refusal(output, call.arguments, read, targets_);
+    open_for_refusal(output, call.arguments, read_, targets_);
   }
   std::vector<TableRecord> inputs;
   if (jobs_) inputs.push_back({"jobs", *jobs_, ""});
@@ -391,6 +401,7 @@ Result<int> BatchCommand::answer(const Call& call) {
   }
   const auto listed = read_jobs(call);
   if (!listed.ok()) return listed.status();
+  note_files_read(*listed);
   std::vector<const ListedJob*> jobs;
   for (std::size_t k = part->number - 1; k < listed->size(); k += part->parts) jobs.push_back(&(*listed)[k]);
   BatchSummary summary;

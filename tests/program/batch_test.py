@@ -178,6 +178,8 @@ class BatchTest(ProgramTest):
                 with self.subTest(place, arguments=arguments):
                     self.assertEqual(self.run_program("batch", *arguments, place).returncode, 2)
         self.assertEqual(self.run_program("batch", "jobs.jsonl", "--resume", "--json", "jobs.results.jsonl").returncode, 2)
+        for option in ("--json", "--junit", "--results"):  # what a job names
+            self.expect_failure(2, "contradiction", "batch", "jobs.jsonl", "--resume", option, "K.mtx")
         self.assertEqual({path: (self.folder / path).read_bytes() for path in before}, before)
 
     def test_resume_goes_by_contents(self):
