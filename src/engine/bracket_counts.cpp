@@ -9,7 +9,10 @@ namespace stanchion {
 namespace {
 
 constexpr int kMostCountsAValue = 120;
-constexpr int kMostDoublings = 60;
+constexpr int kMostDoublings = 60, kSmallStrides = 30;
+/// Over the ratio of the two norms, beyond which no value is looked for: rows without stiffness make the norm
+/// of the scaled second matrix large, and the ratio small.
+constexpr double kFarthest = 0x1p80;
 
 class Bisection {
  public:
@@ -92,13 +95,13 @@ class Bisection {
         first += static_cast<Index>((*at_zero)->most - (*at_zero)->least);  // rigid body modes are apart
     }
     Offset reached = 0;
-    for (int k = 0; k < kMostDoublings; ++k, shift *= 4) {
+    for (int k = 0; k < kMostDoublings; ++k, shift *= k < kSmallStrides ? 4 : 64) {
       auto fact = fact_at(shift);
       if (!fact.ok()) return fact.status();
       if (!*fact) continue;
       reached = negative ? -(*fact)->most : (*fact)->least;
       if (reached - below >= first) break;
-      if (std::fabs(shift) > counter_.pencil().size_ratio() * 0x1p40) break;
+      if (std::fabs(shift) > counter_.pencil().size_ratio() * kFarthest) break;
     }
     const Offset many = std::min<Offset>(first, reached - below);
     if (negative) return std::optional<Numbers>({1 - many, 1});

@@ -14,6 +14,8 @@ namespace {
 /// certified.
 constexpr double kGap = 1e-5;
 constexpr int kMostAttempts = 5;
+/// A range that is sought instead of the first values may hold so many, and eight times as many as those.
+constexpr Offset kMostAsRange = 64;
 /// How far behind an end that lies on a value the range goes on, relative to it: farther than intervals are
 /// wide.
 constexpr double kNearestEnd = 1e-6, kFarthestEnd = 0.05;
@@ -432,7 +434,20 @@ class ResidualBrackets {
       if (*settled && *(*settled)->complete->count >= number) return settled;
       if (!search_->look_closer()) break;
     }
-    return nothing();
+    return first_as_range(wanted);
+  }
+
+  /// Where the end behind the first values was counted, but not all before it were found, or an interval
+  /// holds it: the range that ends there.
+  Result<std::optional<FoundRange>> first_as_range(std::size_t wanted) {
+    if (!counted_) return nothing();
+    const auto [low, high] = *counted_;
+    const Offset number = high.least - (low ? low->least : 0);
+    const auto asked = static_cast<Offset>(wanted);
+    if (number < asked || number > kMostAsRange + 8 * asked) return nothing();
+    auto found = bracket_counted(low, high);
+    if (found.ok() && *found && !low) rest_on_base(*(*found)->complete);
+    return found;
   }
 
   /// The end of the range in the gap behind the last of `many`, counted, and compared.
@@ -479,6 +494,7 @@ class ResidualBrackets {
     const double from = low ? low->shift : start_;
     auto done = proof_.settle(pairs, low, *high, from, high->shift);
     if (done.ok() && *done && !low) rest_on_base(*(*done)->complete);
+    if (done.ok() && !*done && high->exact() && (!low || low->exact())) counted_ = {low, *high};
     return done;
   }
 
@@ -531,6 +547,8 @@ class ResidualBrackets {
   double start_ = 0;  ///< the shift of the base that all began with
   /// An end of the range last sought lies in the interval of a value.
   bool held_low_ = false, held_high_ = false;
+  /// Ends behind the first values, counted, when what lies between them was not found.
+  std::optional<std::pair<std::optional<CountFact>, CountFact>> counted_;
   bool near_ = false;  ///< a base near the values was made, or tried
 };
 

@@ -100,8 +100,9 @@ bool ModeSearch::look_closer() {
     strict_ = true;
     return true;
   }
-  if (!lanczos_->whole()) lanczos_->inject();
-  return !lanczos_->whole();
+  if (lanczos_->whole()) return false;
+  lanczos_->inject();
+  return true;
 }
 
 void ModeSearch::start(Index wanted, const KeptValues& keep) {

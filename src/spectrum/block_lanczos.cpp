@@ -11,8 +11,8 @@
 namespace stanchion {
 namespace {
 
-/// Up to so many rows the whole space is taken; and up to so many where the basis may take half of them, for
-/// from there on one eigenvalue problem of that size takes less time than steps and restarts.
+/// Up to so many rows the whole space is taken; and up to so many where the basis may take half of them, or
+/// where steps have missed something: one eigenvalue problem of that size then takes less time.
 constexpr Index kDense = 320, kDenseForMany = 1024;
 constexpr Offset kPieces =
     16;  ///< of the rows, each with sums of its own: the same for any number of threads
@@ -89,6 +89,7 @@ BlockLanczos::BlockLanczos(Operator apply, Index rows, Index most_columns, std::
 void BlockLanczos::take_whole_space() {
   most_columns_ = columns_ = rows_;
   exhausted_ = whole_ = true;
+  ritz_.clear();
   basis_ = Buffer<double>(Offset{rows_} * rows_, 0.0);
   projected_.assign(at(Offset{rows_} * rows_), 0.0);
   for (Index first = 0; first < rows_; first += kV) {
@@ -291,6 +292,10 @@ bool BlockLanczos::step(const KeptValues& keep) {
 }
 
 void BlockLanczos::inject() {
+  if (rows_ <= kDenseForMany) {
+    take_whole_space();
+    return;
+  }
   std::vector<double> coefficients;
   draw(next_.data());
   orthogonalise(next_.data(), 0, coefficients);

@@ -46,7 +46,8 @@ class BlockLanczos {
   /// there is.
   bool step(const KeptValues& keep);
 
-  /// A block of fresh random vectors joins the space: for what the first one may have missed.
+  /// A block of fresh random vectors joins the space: for what the first one may have missed. Up to 1,024
+  /// rows the whole space takes its place.
   void inject();
 
   /// Approximations from the space so far, by size of the value, largest first. Cost: columns()^3, of a whole

@@ -150,14 +150,14 @@ class Ballast {
   std::vector<std::vector<char>> pieces_;
 };
 
-TEST(Crowd, WithoutRoomForABaseNearItTheAnswerComesFromTheFirstAndFromCounts) {
-  const std::vector<double> values = crowd(40, 1000);
+TEST(Crowd, WithoutRoomForABaseNearItTheAnswerComesFromTheFirst) {
+  const std::vector<double> values = crowd(40, 1100);
   const Offset cap = peak_resident_bytes() + (Offset{64} << 20);
   Ballast ballast(cap);
   const Outcome outcome = bracket({.first = 6, .memory_cap = cap}, values, ballast.context());
   ASSERT_TRUE(ballast.taken());
   expect_brackets(outcome, first_of(values, 6));
-  EXPECT_GT(outcome.work.factorizations, 11);  // not from near it, which takes fewer (above)
+  EXPECT_GT(outcome.work.factorizations, 7);  // not from near it, which takes 5
 }
 
 TEST(Crowd, ABaseIsRefusedWhereWhatIsInUseLeavesNoRoom) {
