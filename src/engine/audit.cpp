@@ -69,25 +69,32 @@ class Audit {
 
   void take_list(const std::vector<ListedValue>& list) {
     list_ = list;
-    spans_.resize(list.size());
-    std::vector<ValueSpan> spans;
-    for (std::size_t k = 0; k < list.size(); ++k) spans.push_back(span_of(list[k], k));
     double low = INFINITY, high = -INFINITY;
-    for (const ValueSpan& span : spans) {
+    for (std::size_t k = 0; k < list.size(); ++k) {
+      const ValueSpan span = span_of(list[k], k);
       low = std::min(low, span.low);
       high = std::max(high, span.high);
     }
     choose_range(low, high);
+    place_list();
+  }
+
+  /// What the list holds of the range.
+  void place_list() {
+    answer_.outside = 0;
+    answer_.values.clear();
+    spans_.assign(list_.size(), {});
     std::vector<ValueSpan> inside;
-    for (ValueSpan& span : spans) {
-      const double value = shift_of(list[span.members.front()].value, asked_.unit);
+    for (std::size_t k = 0; k < list_.size(); ++k) {
+      ValueSpan span = span_of(list_[k], k);
+      const double value = shift_of(list_[k].value, asked_.unit);
       if (value < from_ || value > to_) {
         ++answer_.outside;
         continue;
       }
       span.low = std::max(span.low, from_);
       span.high = std::min(span.high, to_);
-      spans_[span.members.front()] = span;
+      spans_[k] = span;
       answer_.values.push_back(value);
       inside.push_back(std::move(span));
     }
@@ -122,6 +129,7 @@ class Audit {
     ResidualQuestion question;
     if (std::isfinite(from_)) question.range.low = from_;
     question.range.high = to_;
+    question.past_values = true;
     auto answer = bracket_by_residuals(counter_, request_, context_, question, pool_, outcome_);
     if (!answer.ok()) return answer.status();
     known_ = std::move(answer->counts);
@@ -131,6 +139,7 @@ class Audit {
     }
     if (!answer->found || !answer->found->complete) return false;
     const FoundRange& found = *answer->found;
+    take_range(*found.complete, answer->on_ends);
     std::vector<ValueSpan> certain;
     for (const FoundValues& values : found.values)
       certain.push_back({values.low, values.high, values.count, {}});
@@ -139,6 +148,19 @@ class Audit {
     answer_.proof = "residual intervals of all values, and counts at the ends of the range";
     report(compare_spans(clusters_, certain, from_, to_), &found);
     return true;
+  }
+
+  /// The range that is complete, where an end asked lies on a value: it goes on to behind that.
+  void take_range(const CountedRange& complete, Index on_ends) {
+    if (complete.from == from_ && complete.to == to_) return;
+    from_ = complete.from;
+    to_ = complete.to;
+    place_list();
+    if (on_ends == 0) return;
+    counter_.warn(
+        "end-on-value",
+        "an end of the range lies on a value, or too close to it to tell on which side: the list is "
+        "judged up to behind that value. Remedy: give --from and --to a little elsewhere");
   }
 
   /// The verdict rests on all that is known inside the range, not on the counts at its ends alone: when any

@@ -147,6 +147,21 @@ class AuditTest(ProgramTest):
                 document = self.expect(code, "audit", self.stiffness, "--mass", mass, "--values", self.list(chosen), "--unit", unit)
                 self.assertEqual(document["verdict"], "missing" if code else "complete")
 
+    def test_ends_that_lie_on_a_value(self):
+        # K diagonal and G = -I: the factors are 1 to 6, exactly. What lies on an end belongs to the range.
+        stiffness = self.matrix("K6.mtx", 6, diagonal([1, 2, 3, 4, 5, 6]))
+        geometric = self.matrix("G6.mtx", 6, diagonal([-1] * 6))
+        for values, ends, code, verdict, numbers in (
+                ([1, 2, 3], ("--to", 3), 0, "complete", (3, 3)), ([1, 2], ("--to", 3), 1, "missing", (2, 3)),
+                ([2, 3, 4], ("--from", 2, "--to", 4), 0, "complete", (3, 3)),
+                ([1, 3, 4, 5], ("--from", 2, "--to", 4), 1, "missing", (2, 3))):
+            document = self.expect(code, "audit", stiffness, "--geometric", geometric, "--values", self.list(values), *ends)
+            self.assertEqual(document["verdict"], verdict)
+            self.assertEqual((document["range"]["listed"], document["range"]["counted"]), numbers)
+            self.assertIn("end-on-value", [warning["code"] for warning in document["warnings"]])
+            self.assertLess(document["range"]["to"], ends[-1] + 0.5)
+            self.assertGreater(document["range"]["to"], ends[-1])
+
     def test_negative_factors(self):
         document = self.audit(0, [-value for value in FIRST], "--load-sign", "minus")
         self.assertEqual((document["range"]["to"], document["range"]["counted"]), (0, 12))
