@@ -11,7 +11,7 @@ namespace stanchion {
 namespace {
 
 /// An end of the range lies in a gap of at least this relative width, so that the count there is easily
-/// certified.
+/// certified. Nothing to do with what mode_search.cpp calls a cluster, though of the same size.
 constexpr double kGap = 1e-5;
 constexpr int kMostAttempts = 5;
 /// A range that is sought instead of the first values may hold so many, and eight times as many as those.

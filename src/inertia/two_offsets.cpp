@@ -146,11 +146,11 @@ class OffsetScheme {
     found_.certificate.level = Level::kProved;
     found_.certificate.resolution = offset;
     if (positive == rows_) {
-      const double above = offset - bound_below;
+      const double above = smallest_eigenvalue_bound(offset, bound_below);
       double largest_scale = 0;
       for (const double s : *matrix_.scale) largest_scale = std::max(largest_scale, s);
-      // Rounded down: the subtraction and the square may each round up.
-      found_.certificate.smallest_eigenvalue_above = above * (1 - 0x1p-50);
+      found_.certificate.smallest_eigenvalue_above = above;
+      // Rounded down once more: the square and the quotient may each round up.
       found_.certificate.smallest_eigenvalue_of_k_above =
           above / (largest_scale * largest_scale) * (1 - 0x1p-50);
     }

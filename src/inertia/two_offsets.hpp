@@ -56,6 +56,12 @@ struct CertifiedInertia {
 Result<CertifiedInertia> certify_by_offsets(const Analysis& analysis, const ShiftedMatrix& matrix,
                                             const OffsetOptions& options, ThreadPool& pool);
 
+/// The least that an eigenvalue of A can be when A - `offset` I was factored with positive pivots alone and a
+/// backward error of at most `bound`: their difference, rounded down; not positive where nothing follows.
+constexpr double smallest_eigenvalue_bound(double offset, double bound) {
+  return (offset - bound) * (1 - 0x1p-50);
+}
+
 /// What the signs say.
 Verdict verdict_of(const Inertia& inertia, Level level);
 

@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "inertia/relative.hpp"
+#include "inertia/two_offsets.hpp"
 
 namespace stanchion {
 namespace {
@@ -85,7 +86,7 @@ Result<double> DefiniteBase::proved_bound(const Analysis& analysis, const Defini
     ++cost.factorizations;
     cost.factor_seconds += attempt->seconds;
     if (attempt->stopped || attempt->breakdown || !std::isfinite(attempt->error_bound)) continue;
-    return std::max(0.0, (shifted.offset - attempt->error_bound) * (1 - 0x1p-50));
+    return std::max(0.0, smallest_eigenvalue_bound(shifted.offset, attempt->error_bound));
   }
   return 0.0;
 }
@@ -93,7 +94,7 @@ Result<double> DefiniteBase::proved_bound(const Analysis& analysis, const Defini
 /// ||B - M M^T|| <= eta, error_bound and the rounding of the roots; then ||M^-1||^2 <= 1 / (kappa - eta).
 bool DefiniteBase::by_proof(double smallest_eigenvalue) {
   const double eta = factorization_->error_bound * 1.1;
-  const double least = (smallest_eigenvalue - eta) * (1 - 0x1p-50);
+  const double least = smallest_eigenvalue_bound(smallest_eigenvalue, eta);  // of M M^T, by Weyl
   if (!(least > 0) || !(eta / least < kCloseEnough)) return false;
   relative_ = eta / least * (1 + 0x1p-50);
   inverse_norm_ = 1 / std::sqrt(least) * (1 + 0x1p-50);

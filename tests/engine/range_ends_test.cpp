@@ -85,5 +85,35 @@ TEST(RangeEnds, BothEndsBesideTheSameValue) {
   expect_range(2000 * (1 - 1e-11), 2000 * (1 + 1e-11), 1, 1);
 }
 
+Outcome first_of_mass(Index first, const std::vector<double>& stiffness, const std::vector<double>& mass) {
+  const ModelFiles files;
+  Request request;
+  request.pencil = Pencil::kMass;
+  request.threads = 1;
+  request.input.stiffness = files.matrix("K.mtx", diagonal(stiffness));
+  request.input.mass = files.matrix("M.mtx", diagonal(mass));
+  request.bracket.unit = ValueUnit::kOmega2;
+  request.bracket.first = first;
+  return answer(run_bracket(request, {}));
+}
+
+TEST(RangeEnds, TheLowestOfAnIndefiniteStiffnessEndBelowZero) {
+  const Outcome outcome = first_of_mass(1, {-3, -1, 2, 7}, {1, 1, 1, 1});
+  ASSERT_TRUE(outcome.bracket && outcome.bracket->complete);
+  EXPECT_EQ(outcome.bracket->complete->count, 1);
+  EXPECT_GT(outcome.bracket->complete->to, -3);
+  EXPECT_LT(outcome.bracket->complete->to, -1);
+  EXPECT_LT(outcome.bracket->complete->from, -3);
+  EXPECT_NEAR(outcome.bracket->critical.at(0).value, -3, 1e-7);
+}
+
+TEST(RangeEnds, WithAnIndefiniteMassTheFirstBeginAtZero) {
+  const Outcome outcome = first_of_mass(4, {3, 1, 2, 7}, {-1, 1, 1, -1});  // values -7, -3, 1, 2
+  ASSERT_TRUE(outcome.bracket && outcome.bracket->complete);
+  EXPECT_EQ(outcome.bracket->complete->from, 0);
+  EXPECT_EQ(outcome.bracket->complete->count, 2);
+  EXPECT_TRUE(warned(outcome, "fewer-than-asked"));
+}
+
 }  // namespace
 }  // namespace stanchion::test
