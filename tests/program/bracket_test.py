@@ -124,6 +124,17 @@ class BracketTest(ProgramTest):
             self.assertTrue(value["low"] <= true <= value["high"])
         self.assertNotIn("fewer-than-asked", [warning["code"] for warning in document["warnings"]])
 
+    def test_counts_look_far_enough_where_a_row_has_mass_alone(self):
+        # The heavy row without stiffness makes the norm of the scaled mass 1e15 times that of the stiffness.
+        stiffness = self.matrix("Kh.mtx", 6, diagonal([1, 2, 3, 4, 5, 0]))
+        mass = self.matrix("Mh.mtx", 6, diagonal([1, 1, 1, 1, 1, 1e15]))
+        document = self.bracket(0, stiffness, "--mass", mass, "--first", 3, "--method", "counts")
+        self.assertEqual(document["complete"]["count"], 4)
+        self.assertEqual([value["rigid_body"] for value in document["critical"]], [True, False, False, False])
+        for value, true in zip(document["critical"], (0, 1, 2, 3), strict=True):
+            self.assertEqual(value["multiplicity"], 1)
+            self.assertTrue(value["low"] <= true <= value["high"])
+
     def test_values_below_where_the_mass_is_indefinite_are_those_between_0_and_the_end(self):
         # K = I and M diagonal: the values are the reciprocals of the masses, two of them negative.
         masses = [-4.0, -2.0, 1.0, 2.0, 8.0]
