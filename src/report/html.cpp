@@ -136,11 +136,13 @@ std::string inputs_to_html(const Outcome& outcome) {
                   "class=\"right\">equations</th><th scope=\"col\" class=\"right\">entries</th>"
                   "<th scope=\"col\">SHA-256</th>");
   for (const InputRecord& input : outcome.inputs) {
+    const bool first_step = outcome.path && &input == &outcome.inputs.front();
     html += fmt::format(
-        "<tr><td>{}{}</td><td>{}</td><td class=\"right\">{}</td><td class=\"right\">{}</td><td "
+        "<tr><td>{}{}{}</td><td>{}</td><td class=\"right\">{}</td><td class=\"right\">{}</td><td "
         "class=\"digest\">{}</td></tr>\n",
-        escaped(input.role), input.factor ? ", times " + exact(*input.factor) : "", path_to_html(input.path),
-        grouped(input.rows), grouped(input.entries), escaped(input.sha256));
+        escaped(input.role), first_step ? ", step 1" : "",
+        input.factor ? ", times " + exact(*input.factor) : "", path_to_html(input.path), grouped(input.rows),
+        grouped(input.entries), escaped(input.sha256));
   }
   const auto file = [&](const std::string& role, const std::string& path, const std::string& sha256) {
     html += fmt::format("<tr><td>{}</td><td>{}</td><td></td><td></td><td class=\"digest\">{}</td></tr>\n",

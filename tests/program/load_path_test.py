@@ -36,7 +36,10 @@ class LoadPathTest(ProgramTest):
         dofs.write_text("equation,node,dof\n" + "".join(f"{k + 1},{k + 1},ux\n" for k in range(ROWS)), encoding="ascii")
         page = self.folder / "path.html"
         document = self.expect(1, "check", *paths, "--dofs", str(dofs), "--html", str(page))
-        self.assertIn("Which step of the load path is the first that is not positive definite?", page.read_text(encoding="utf-8"))
+        text_of_page = page.read_text(encoding="utf-8")
+        self.assertIn("Which step of the load path is the first that is not positive definite?", text_of_page)
+        for role in ("stiffness, step 1", "step 2", "step 3"):
+            self.assertEqual(text_of_page.count(f"<td>{role}</td>"), 1)
         self.assertEqual([table["role"] for table in document["tables"]], ["dofs"])
         text = page.read_text(encoding="utf-8")
         for path in [*paths, dofs]:
