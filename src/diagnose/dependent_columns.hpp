@@ -13,6 +13,9 @@ struct SparseEntry {
 };
 using SparseColumn = std::vector<SparseEntry>;
 
+/// Of a search for dependence: some tenths of a second.
+constexpr Offset kMostDependenceSteps = 100'000'000;
+
 /// For every column that follows from earlier ones, to 2^-40 of what cancels, the coefficients of a
 /// combination that is zero: by column number, ascending, the dependent column with 1. Columns are of about
 /// unit length, in rows [0, rows). Elimination column by column with partial pivoting (Gilbert and Peierls,

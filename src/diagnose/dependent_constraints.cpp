@@ -12,7 +12,6 @@
 namespace stanchion {
 namespace {
 
-constexpr Offset kMostSteps = 100'000'000;  ///< of the elimination: some tenths of a second
 constexpr Offset kMostEntries = 3'000'000;  ///< of all vectors together
 constexpr Offset kMostDense = 2'500'000;    ///< of one set while it is made orthonormal by blocks
 
@@ -23,7 +22,7 @@ class Dependence {
 
   std::vector<RepeatedConstraint> run() {
     const std::vector<double> size = make_unit();
-    combinations_ = dependent_columns(columns_, image_.size(), kMostSteps);
+    combinations_ = dependent_columns(columns_, image_.size(), kMostDependenceSteps);
     for (SparseColumn& one : combinations_) {
       for (SparseEntry& entry : one) entry.value /= size[static_cast<std::size_t>(entry.at)];
     }
@@ -90,8 +89,8 @@ class Dependence {
     }
     const auto n = static_cast<Index>(rows.size());
     const bool few = Offset{n} * static_cast<Offset>(vectors.size()) <= std::min(kMostDense, entries_left_);
-    for (const SparseColumn& one :
-         few ? dense_orthonormal(vectors, n) : sparse_orthonormal(vectors, n, kMostSteps, entries_left_))
+    for (const SparseColumn& one : few ? dense_orthonormal(vectors, n)
+                                       : sparse_orthonormal(vectors, n, kMostDependenceSteps, entries_left_))
       add(rows, one);
   }
 

@@ -75,7 +75,6 @@ std::vector<char> repeated_rows(const std::vector<ConstraintRow>& rows) {
 
 /// Marks rows that follow exactly from others that are not marked.
 void mark_dependent(const std::vector<ConstraintRow>& rows, Index columns, std::vector<char>& repeated) {
-  constexpr Offset kMostSteps = 100'000'000;  // some tenths of a second
   std::vector<SparseColumn> vectors;
   std::vector<std::size_t> number;
   for (std::size_t m = 0; m < rows.size(); ++m) {
@@ -84,7 +83,7 @@ void mark_dependent(const std::vector<ConstraintRow>& rows, Index columns, std::
     number.push_back(m);
     for (const auto& [column, value] : rows[m]) vectors.back().push_back({column, value});
   }
-  const std::vector<char> dependent = exactly_dependent(vectors, columns, kMostSteps);
+  const std::vector<char> dependent = exactly_dependent(vectors, columns, kMostDependenceSteps);
   for (std::size_t k = 0; k < number.size(); ++k) repeated[number[k]] = dependent[k];
 }
 
