@@ -4,22 +4,16 @@
 #include <cmath>
 
 #include "engine/mode_search.hpp"
+#include "engine/range_ends.hpp"
 #include "engine/residual_proof.hpp"
 #include "model/shift_grid.hpp"
 
 namespace stanchion {
 namespace {
 
-/// An end of the range lies in a gap of at least this relative width, so that the count there is easily
-/// certified. Nothing to do with what mode_search.cpp calls a cluster, though of the same size.
-constexpr double kGap = 1e-5;
 constexpr int kMostAttempts = 5;
 /// A range that is sought instead of the first values may hold so many, and eight times as many as those.
 constexpr Offset kMostAsRange = 64;
-/// How far behind an end that lies on a value the range goes on, relative to it: farther than intervals are
-/// wide.
-constexpr double kNearestEnd = 1e-6, kFarthestEnd = 0.05;
-
 class ResidualBrackets {
  public:
   ResidualBrackets(PencilCounter& counter, const Request& request, const RunContext& context,
@@ -30,7 +24,8 @@ class ResidualBrackets {
         question_(question),
         pool_(pool),
         outcome_(outcome),
-        proof_(counter, request, outcome, answer_.counts) {}
+        proof_(counter, request, outcome, answer_.counts),
+        ends_(counter, proof_) {}
 
   Result<ResidualAnswer> run() {
     const auto count = [this](double shift) { return count_at(shift); };
@@ -176,12 +171,12 @@ class ResidualBrackets {
     const ValueRange range = countable(counter_, question_.range);
     std::optional<CountFact> low, high;
     if (range.low) {
-      auto counted = end_at(*range.low, -1);
+      auto counted = ends_.at(*range.low, -1, question_.past_values);
       if (!counted.ok()) return counted.status();
       low = *counted;
       if (!low) return nothing();
     }
-    auto counted = end_at(*range.high, 1);
+    auto counted = ends_.at(*range.high, 1, question_.past_values);
     if (!counted.ok()) return counted.status();
     high = *counted;
     if (!high) return nothing();
@@ -189,31 +184,6 @@ class ResidualBrackets {
     if (!found.ok() || !*found) return found;
     return std::optional(
         cut_to(std::move(**found), range.low.value_or(lowest()), *range.high, answer_.on_ends));
-  }
-
-  /// The count at an end of the range; where that lies on a value, and may move, at a place behind the value.
-  Result<std::optional<CountFact>> end_at(double end, int outwards) {
-    if (counter_.two_sided() && end == 0) {  // K is definite: n(0) = 0, and 0 itself is never a value
-      return std::optional<CountFact>(counter_.fact_at_origin());
-    }
-    auto asked = count_at(end);
-    if (!asked.ok() || (*asked && (*asked)->exact())) return asked;
-    if (!question_.past_values) return std::optional<CountFact>();
-    const auto band = *asked ? (*asked)->band : std::nullopt;
-    const double size = std::fabs(end), edge = !band ? end : outwards > 0 ? band->second : band->first;
-    return exact_behind(std::fabs(edge - end) < kFarthestEnd * size ? edge : end, size, outwards);
-  }
-
-  /// An exact count outwards of `start`, by a part of `size`; nothing where none is near.
-  Result<std::optional<CountFact>> exact_behind(double start, double size, int outwards) {
-    for (double part = kNearestEnd; part < kFarthestEnd; part *= 32) {
-      const double shift =
-          shortest_between(start + outwards * part * size, start + 2 * outwards * part * size);
-      auto beyond = count_at(shift);
-      if (!beyond.ok()) return beyond;
-      if (*beyond && (*beyond)->exact()) return beyond;
-    }
-    return std::optional<CountFact>();
   }
 
   /// All values between two exact counts. Where the interval of a value holds one of the two ends, and cannot
@@ -232,7 +202,7 @@ class ResidualBrackets {
       for (const bool upper : {false, true}) {
         if (!(upper ? held_high_ : held_low_)) continue;
         std::optional<CountFact>& outer = upper ? outer_high : outer_low;
-        auto behind = exact_behind(outer->shift, part * std::fabs(outer->shift), upper ? 1 : -1);
+        auto behind = ends_.behind(outer->shift, part * std::fabs(outer->shift), upper ? 1 : -1);
         if (!behind.ok()) return behind.status();
         if (!*behind) return nothing();
         outer = *behind;
@@ -372,19 +342,6 @@ class ResidualBrackets {
   // ---- the first ones
   // -------------------------------------------------------------------------------------------
 
-  /// How many of `found` to take: `wanted`, and what is not told apart from the last of them; 0 as long as
-  /// the next one is not known well enough.
-  static std::size_t end_of_cluster(const Candidates& found, std::size_t wanted) {
-    for (std::size_t many = wanted; many <= found.leading && many > 0; ++many) {
-      if (many >= found.list.size()) return 0;
-      const double last = std::fabs(found.list[many - 1].theta), next = std::fabs(found.list[many].theta);
-      const double gap = last - next;
-      if (gap > kGap * last && found.list[many].ritz.residual < 0.2 * gap) return many;
-      if (gap > kGap * last) return 0;
-    }
-    return 0;
-  }
-
   /// What a full space is reduced to.
   KeptValues keep(Index most, Side side) const {
     if (counter_.kind() == CountKind::kBelow) return {most, 0};
@@ -468,7 +425,7 @@ class ResidualBrackets {
     double end = shortest_between(sign * base_->shift_of(sign * theta * (1 - gap)),
                                   sign * base_->shift_of(sign * theta * (1 + gap)));
     if (many < wanted) {
-      auto reached = look_further(end, side, static_cast<Offset>(many));
+      auto reached = ends_.look_further(end, side, static_cast<Offset>(many));
       if (!reached.ok()) return reached.status();
       if (!*reached) return nothing();  // there are more, too far out for this space
     }
@@ -506,34 +463,6 @@ class ResidualBrackets {
     range.failure_probability = range.failure_probability.value_or(0) + base.failure_probability.value_or(0);
   }
 
-  /// Moves `end` outwards in a few long strides, as long as the counts there find no more than `many`; false
-  /// when they do.
-  Result<bool> look_further(double& end, Side side, Offset many) {
-    constexpr int kStrides = 4;
-    constexpr double kStride = 32;
-    const double signs[2] = {1, -1};
-    for (int k = 0; k < kStrides; ++k) {
-      Offset inside = 0;
-      for (const double sign : signs) {
-        if (side != Side::kBoth && (sign > 0) != (side == Side::kPositive)) continue;
-        auto fact = count_at(sign * end * kStride);
-        if (!fact.ok()) return fact.status();
-        if (!*fact || !(*fact)->exact()) return true;  // as far as counts can tell
-        inside += std::abs((*fact)->least);
-      }
-      if (inside > many) return false;
-      end *= kStride;
-    }
-    return true;
-  }
-
-  /// Half the free space around `theta`, relative to it.
-  static double gap_of(const Candidates& found, std::size_t many, double theta) {
-    if (many == 0 || many >= found.list.size()) return 0.5;
-    const double next = std::fabs(found.list[many].theta);
-    return std::clamp((theta - next) / theta, 0.0, 0.5);
-  }
-
   PencilCounter& counter_;
   const Request& request_;
   const RunContext& context_;
@@ -542,6 +471,7 @@ class ResidualBrackets {
   Outcome& outcome_;
   ResidualAnswer answer_;
   ResidualProof proof_;
+  RangeEnds ends_;
   std::optional<SpectralBase> base_;
   std::optional<ModeSearch> search_;
   double start_ = 0;  ///< the shift of the base that all began with
