@@ -102,8 +102,10 @@ class BaseSettler {
       if (!(value > 0) || (tau < 30 * value && tau > value / 1000)) return {};
       auto moved = move_to(value);
       if (!moved.ok()) return moved.status();
-      if (!*moved || *elastic) return {};
+      if (*elastic) return {};
+      if (!*moved) break;
     }
+    if (base_->tau == began) return {};
     auto back = move_to(began);
     return back.ok() ? Status{} : back.status();
   }

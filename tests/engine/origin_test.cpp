@@ -82,5 +82,39 @@ TEST(Origin, AnAuditJudgesAListFromIt) {
   EXPECT_EQ(answer(run_audit(request, {})).audit->verdict, AuditVerdict::kMissing);
 }
 
+/// K and M diagonal: the values are the quotients of their entries where M has one (by hand).
+void expect_first(const std::vector<double>& stiffness, const std::vector<double>& mass,
+                  const std::vector<double>& values) {
+  ModelFiles files;
+  const auto diagonal = [](const std::vector<double>& entry) {
+    std::vector<Triplet> entries;
+    for (std::size_t i = 0; i < entry.size(); ++i)
+      if (entry[i] != 0) entries.push_back({static_cast<Index>(i), static_cast<Index>(i), entry[i]});
+    return from_triplets(static_cast<Index>(entry.size()), entries);
+  };
+  Request request;
+  request.input.stiffness = files.matrix("K.mtx", diagonal(stiffness));
+  request.input.mass = files.matrix("M.mtx", diagonal(mass));
+  request.pencil = Pencil::kMass;
+  request.bracket.unit = ValueUnit::kOmega2;
+  request.bracket.first = 2;
+  const Outcome outcome = answer(run_bracket(request, {}));
+  ASSERT_EQ(outcome.bracket->critical.size(), values.size());
+  for (std::size_t k = 0; k < values.size(); ++k) {
+    const CriticalValue& found = outcome.bracket->critical[k];
+    EXPECT_LE(found.low, values[k]);
+    EXPECT_GE(found.high, values[k]);
+    EXPECT_LT(found.high - found.low, 1e-6);
+    EXPECT_EQ(found.rigid_body, values[k] == 0);
+  }
+}
+
+// Nothing follows the values below and at zero: looking farther out for what does must not leave the base
+// there, where they are not told apart.
+TEST(Origin, WithoutElasticValuesTheOthersStayNarrow) {
+  expect_first({-3, -1, 5, 7}, {1, 1, 0, 0}, {-3, -1});
+  expect_first({-3, 0, 5, 7}, {1, 1, 0, 0}, {-3, 0});
+}
+
 }  // namespace
 }  // namespace stanchion::test
