@@ -83,34 +83,6 @@ inline Real abs_sum_of(const Real* x, Index count) {
   return result;
 }
 
-Index factor_tile(Real* tile, Index leading, Index width, bool definite, double growth_limit,
-                  PivotArrays pivots) {
-  for (Index k = 0; k < width; ++k) {
-    Real* column = tile + static_cast<long>(k) * leading;
-    const Real pivot = column[k];
-    if (!finite(pivot) || (definite ? pivot : magnitude(pivot)) < kLeastRealPivot) return k;
-    if (!definite) {
-      const Real largest = abs_max(column + k + 1, width - k - 1);
-      if (!(largest <= growth_limit * magnitude(pivot))) return k;
-    }
-    pivots.diagonal[k] = pivot;
-    pivots.off_diagonal[k] = 0;
-    pivots.kind[k] = PivotKind::kOne;
-    const Real inverse = 1 / pivot;
-    for (Index i = k + 1; i < width; ++i) {
-      const Real w = column[i];
-      tile[k + static_cast<long>(i) * leading] = w;
-      column[i] = w * inverse;
-    }
-    for (Index j = k + 1; j < width; ++j) {
-      Real* target = tile + static_cast<long>(j) * leading;
-      const Real w = target[k];
-      for (Index i = j; i < width; ++i) target[i] -= column[i] * w;
-    }
-  }
-  return width;
-}
-
 void swap_rows_and_columns(Real* full, Index leading, Index width, Index a, Index b, Index* permutation) {
   if (a == b) return;
   for (Index i = 0; i < width; ++i) {
@@ -240,26 +212,6 @@ Index factor_tile_pivoted(Real* tile, Index leading, Index width, PivotArrays pi
   return k;
 }
 
-void invert_unit_lower(const Real* lower, Index leading, Index width, Real* inverse, Index leading_inverse) {
-  // Columns of the inverse in groups of eight, so that L is read an eighth as often.
-  constexpr Index kGroup = 8;
-  for (Index begin = 0; begin < width; begin += kGroup) {
-    const Index columns = width - begin < kGroup ? width - begin : kGroup;
-    Real* x = inverse + static_cast<long>(begin) * leading_inverse;
-    for (Index c = 0; c < columns; ++c) {
-      for (Index i = 0; i < width; ++i) x[i + c * leading_inverse] = i == begin + c ? 1 : 0;
-    }
-    for (Index j = begin; j < width; ++j) {
-      const Real* column = lower + static_cast<long>(j) * leading;
-      for (Index c = 0; c < columns; ++c) {
-        Real* target = x + c * leading_inverse;
-        const Real factor = target[j];
-        for (Index i = j + 1; i < width; ++i) target[i] -= column[i] * factor;
-      }
-    }
-  }
-}
-
 /// Four columns at a time, so that the row sums are loaded and stored a quarter as often.
 void weighted_abs_sums(const Real* a, Index leading, Index rows, Index columns, const Real* weight,
                        Real* row_sum, Real* column_sum) {
@@ -320,6 +272,7 @@ Real copy_with_abs_sums(const Real* source, Index count, Real* destination, Real
 }  // namespace stanchion
 
 #include "dense/kernels_product.hpp"
+#include "dense/kernels_tile.hpp"
 
 namespace stanchion {
 namespace STANCHION_KERNEL_ISA {

@@ -28,8 +28,7 @@ Result<std::optional<CountFact>> RangeEnds::at(double end, int outwards, bool ma
 
 Result<std::optional<CountFact>> RangeEnds::behind(double start, double size, int outwards) {
   for (double part = kNearestEnd; part < kFarthestEnd; part *= 32) {
-    const double shift =
-        shortest_between(start + outwards * part * size, start + 2 * outwards * part * size);
+    const double shift = shortest_between(start + outwards * part * size, start + 2 * outwards * part * size);
     auto beyond = proof_.count_at(shift);
     if (!beyond.ok()) return beyond;
     if (*beyond && (*beyond)->exact()) return beyond;

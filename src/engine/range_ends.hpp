@@ -24,8 +24,8 @@ class RangeEnds {
   /// An exact count outwards of `start`, by a part of `size`; nothing where none is near.
   Result<std::optional<CountFact>> behind(double start, double size, int outwards);
 
-  /// Moves `end` outwards in a few long strides, as long as the counts there, and at its negative where `side`
-  /// says so, find no more than `many`; false when they do.
+  /// Moves `end` outwards in a few long strides, as long as the counts there, and at its negative where
+  /// `side` says so, find no more than `many`; false when they do.
   Result<bool> look_further(double& end, Side side, Offset many);
 
  private:
