@@ -129,20 +129,34 @@ class Bisection {
       const double width = bracket->high - bracket->low;
       if (width <= request_.bracket.width * size || width < 0x1p-60 * counter_.pencil().size_ratio())
         return {};
-      // Far apart ends of one sign: the geometric middle gains digits faster.
-      const bool spread = bracket->low > 0 && bracket->high > 4 * bracket->low;
-      const bool spread_negative = bracket->high < 0 && bracket->low < 4 * bracket->high;
-      double middle = bracket->low + width / 2;
-      if (spread) middle = std::sqrt(bracket->low) * std::sqrt(bracket->high);
-      if (spread_negative) middle = -std::sqrt(-bracket->low) * std::sqrt(-bracket->high);
+      const double middle = middle_of(*bracket);
       if (!(middle > bracket->low && middle < bracket->high)) return {};
-      auto fact = fact_at(middle);
-      if (!fact.ok()) return fact.status();
-      const auto next = staircase_.bracket(number);
-      if (next && next->high - next->low < 0.9 * width) continue;
-      return {};  // the band around the value itself is as narrow as counts can tell
+      auto narrower = narrowed_at(middle, number);
+      if (!narrower.ok()) return narrower.status();
+      if (!*narrower) return {};  // the band around the value itself is as narrow as counts can tell
     }
     return {};
+  }
+
+  /// Far apart ends of one sign: the geometric middle gains digits faster. Not the middle of round ends: it
+  /// is round as well, as values of simple models are, and a count at a value may tell nothing.
+  static double middle_of(const Staircase::Bracket& bracket) {
+    const bool spread = bracket.low > 0 && bracket.high > 4 * bracket.low;
+    const bool spread_negative = bracket.high < 0 && bracket.low < 4 * bracket.high;
+    if (spread) return std::sqrt(bracket.low) * std::sqrt(bracket.high);
+    if (spread_negative) return -std::sqrt(-bracket.low) * std::sqrt(-bracket.high);
+    return bracket.low + (bracket.high - bracket.low) * 0.49;
+  }
+
+  /// Whether a count at `shift`, inside the interval of a value, makes it end there, or a tenth narrower.
+  Result<bool> narrowed_at(double shift, Offset number) {
+    const auto before = staircase_.bracket(number);
+    auto fact = fact_at(shift);
+    if (!fact.ok()) return fact.status();
+    const auto after = staircase_.bracket(number);
+    if (!before || !after) return false;
+    return after->low == shift || after->high == shift ||
+           after->high - after->low < 0.9 * (before->high - before->low);
   }
 
   /// An interval holds all values that are not told apart from its own: those join, whether asked or not.

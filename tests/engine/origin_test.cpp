@@ -86,12 +86,6 @@ TEST(Origin, AnAuditJudgesAListFromIt) {
 void expect_first(const std::vector<double>& stiffness, const std::vector<double>& mass,
                   const std::vector<double>& values) {
   ModelFiles files;
-  const auto diagonal = [](const std::vector<double>& entry) {
-    std::vector<Triplet> entries;
-    for (std::size_t i = 0; i < entry.size(); ++i)
-      if (entry[i] != 0) entries.push_back({static_cast<Index>(i), static_cast<Index>(i), entry[i]});
-    return from_triplets(static_cast<Index>(entry.size()), entries);
-  };
   Request request;
   request.input.stiffness = files.matrix("K.mtx", diagonal(stiffness));
   request.input.mass = files.matrix("M.mtx", diagonal(mass));
