@@ -68,7 +68,7 @@ inline void eliminate_rows(TileCopy& tile, Index begin, Index count, Index i, Pa
   for (Index p = 0; p < kPanelWidth; ++p) x[p] = p < count ? load(tile.column(begin + p) + i) : Lanes{};
 #pragma GCC unroll 16
   for (Index p = 0; p < kPanelWidth; ++p) {
-    if (p >= count) break;
+    if (p >= count) continue;  // of the last panel
     const Lanes undivided = x[p];
     if (OnDiagonal) {
       pivots.pivot[p] = undivided[p];
