@@ -45,7 +45,7 @@ struct KernelSet {
   /// the diagonal L, above it (row k, column i) the undivided multiplier w = l_ik d_k, pivots into `pivots`.
   /// Stops before the first column whose pivot is below kLeastPivot (in magnitude, unless `definite`), not
   /// finite, or, unless `definite`, has a multiplier above `growth_limit`. Returns the number of columns
-  /// eliminated.
+  /// eliminated; the pivot refused stands on the diagonal.
   Index (*factor_tile)(Scalar* tile, Index leading, Index width, bool definite, double growth_limit,
                        PivotArrays pivots);
 

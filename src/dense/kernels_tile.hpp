@@ -1,5 +1,6 @@
-// Triangles of one tile, included by kernels_impl.hpp once per instruction set: the unpivoted factorization, and
-// the inverse of its L. Both work on a copy whose columns are whole registers, so that no loop has a remainder.
+// Triangles of one tile, included by kernels_impl.hpp once per instruction set: the unpivoted factorization,
+// and the inverse of its L. Both work on a copy whose columns are whole registers, so that no loop has a
+// remainder.
 
 namespace stanchion {
 namespace {
@@ -37,16 +38,15 @@ struct TileCopy {
   }
 };
 
-/// Columns [j, j + Columns) of the tile, rows from `first` on, less the products of `panel` with the undivided
+/// Columns [j, j + Columns) of the tile less the products of the panel from `begin` on with its undivided
 /// multipliers `w`.
 template <Index Columns>
-inline void subtract_panel(TileCopy& tile, const Real* panel, const Real (*w)[kTileWidth], Index first,
-                           Index j) {
-  for (Index i = first; i < tile.leading; i += kLanes) {
+inline void subtract_panel(TileCopy& tile, Index begin, const Real (*w)[kTileWidth], Index j) {
+  for (Index i = j / kLanes * kLanes; i < tile.leading; i += kLanes) {
     Lanes target[Columns];
     for (Index c = 0; c < Columns; ++c) target[c] = load(tile.column(j + c) + i);
     for (Index p = 0; p < kPanelWidth; ++p) {
-      const Lanes row = load(panel + p * tile.leading + i);
+      const Lanes row = load(tile.column(begin + p) + i);
       for (Index c = 0; c < Columns; ++c) target[c] -= row * w[p][j + c];
     }
     for (Index c = 0; c < Columns; ++c) store(tile.column(j + c) + i, target[c]);
@@ -78,12 +78,13 @@ inline void eliminate_rows(TileCopy& tile, Index begin, Index count, Index i, Pa
     store(w[p] + i, undivided);
     store(tile.column(begin + p) + i, divided);
 #pragma GCC unroll 16
-    for (Index j = p + 1; j < kPanelWidth; ++j) x[j] -= divided * (OnDiagonal ? undivided[j] : w[p][begin + j]);
+    for (Index j = p + 1; j < kPanelWidth; ++j)
+      x[j] -= divided * (OnDiagonal ? undivided[j] : w[p][begin + j]);
   }
 }
 
-/// Eliminates columns [begin, end) and updates these columns alone; `w` gets the columns undivided. Returns the
-/// first column that is no pivot; what stands from there on is of no use but the pivot itself.
+/// Eliminates columns [begin, end) and updates these columns alone; `w` gets the columns undivided. Returns
+/// the first column that is no pivot; what stands from there on is of no use but the pivot itself.
 Index factor_panel(TileCopy& tile, Index begin, Index end, Index width, bool definite, double growth_limit,
                    PivotArrays pivots, Real (*w)[kTileWidth]) {
   PanelPivots found{};
@@ -124,12 +125,10 @@ Index factor_tile(Real* tile, Index leading, Index width, bool definite, double 
     if (found < end) break;
     constexpr Index kColumns = 4;
     Index j = end;
-    for (; j + kColumns <= width; j += kColumns)
-      subtract_panel<kColumns>(work, work.column(begin), w, j / kLanes * kLanes, j);
-    for (; j < width; ++j) subtract_panel<1>(work, work.column(begin), w, j / kLanes * kLanes, j);
+    for (; j + kColumns <= width; j += kColumns) subtract_panel<kColumns>(work, begin, w, j);
+    for (; j < width; ++j) subtract_panel<1>(work, begin, w, j);
   }
-  const Index shown = found < width ? found + 1 : width;  // the refused pivot, too
-  for (Index k = 0; k < shown; ++k) {
+  for (Index k = 0; k < found; ++k) {
     const Real* source = work.column(k);
     Real* target = tile + static_cast<long>(k) * leading;
     for (Index i = k + 1; i < width; ++i) target[i] = source[i];
@@ -138,8 +137,8 @@ Index factor_tile(Real* tile, Index leading, Index width, bool definite, double 
   return found;
 }
 
-/// Columns [c, c + Columns) of the inverse by forward substitution, a register of rows at a time. `corner[k]`:
-/// column k of L below the diagonal, as far as the register of row k goes.
+/// Columns [c, c + Columns) of the inverse by forward substitution, a register of rows at a time.
+/// `corner[k]`: column k of L below the diagonal, as far as the register of row k goes.
 template <Index Columns>
 inline void invert_columns(TileCopy& lower, const Lanes* corner, Index c, TileCopy& inverse) {
   const Index start = c / kLanes * kLanes;

@@ -131,7 +131,7 @@ class Bisection {
         return {};
       const double middle = middle_of(*bracket);
       if (!(middle > bracket->low && middle < bracket->high)) return {};
-      auto narrower = narrowed_at(middle, number);
+      auto narrower = narrowed_at(middle, *bracket, number);
       if (!narrower.ok()) return narrower.status();
       if (!*narrower) return {};  // the band around the value itself is as narrow as counts can tell
     }
@@ -148,15 +148,15 @@ class Bisection {
     return bracket.low + (bracket.high - bracket.low) * 0.49;
   }
 
-  /// Whether a count at `shift`, inside the interval of a value, makes it end there, or a tenth narrower.
-  Result<bool> narrowed_at(double shift, Offset number) {
-    const auto before = staircase_.bracket(number);
+  /// Whether a count at `shift`, inside the interval `before` of a value, makes it end there, or a tenth
+  /// narrower.
+  Result<bool> narrowed_at(double shift, const Staircase::Bracket& before, Offset number) {
     auto fact = fact_at(shift);
     if (!fact.ok()) return fact.status();
     const auto after = staircase_.bracket(number);
-    if (!before || !after) return false;
+    if (!after) return false;
     return after->low == shift || after->high == shift ||
-           after->high - after->low < 0.9 * (before->high - before->low);
+           after->high - after->low < 0.9 * (before.high - before.low);
   }
 
   /// An interval holds all values that are not told apart from its own: those join, whether asked or not.

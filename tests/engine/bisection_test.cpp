@@ -9,16 +9,11 @@
 namespace stanchion::test {
 namespace {
 
-/// K and M diagonal: the values are the quotients of their entries where M has one (by hand). One lies
-/// between `from` and `to`.
+/// One value of a diagonal pencil lies between `from` and `to`.
 void expect_one(const std::vector<double>& stiffness, const std::vector<double>& mass, double from, double to,
                 double value) {
   ModelFiles files;
-  Request request;
-  request.input.stiffness = files.matrix("K.mtx", diagonal(stiffness));
-  request.input.mass = files.matrix("M.mtx", diagonal(mass));
-  request.pencil = Pencil::kMass;
-  request.bracket.unit = ValueUnit::kOmega2;
+  Request request = diagonal_pencil(files, stiffness, mass);
   request.bracket.from = from;
   request.bracket.to = to;
   const Outcome outcome = answer(run_bracket(request, {}));

@@ -71,4 +71,15 @@ inline SymmetricMatrix diagonal(const std::vector<double>& values) {
   return from_triplets(static_cast<Index>(values.size()), entries);
 }
 
+/// Asks for omega^2 of K and M diagonal: the quotients of their entries where M has one (by hand).
+inline Request diagonal_pencil(ModelFiles& files, const std::vector<double>& stiffness,
+                               const std::vector<double>& mass) {
+  Request request;
+  request.input.stiffness = files.matrix("K.mtx", diagonal(stiffness));
+  request.input.mass = files.matrix("M.mtx", diagonal(mass));
+  request.pencil = Pencil::kMass;
+  request.bracket.unit = ValueUnit::kOmega2;
+  return request;
+}
+
 }  // namespace stanchion::test

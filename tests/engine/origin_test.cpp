@@ -82,15 +82,11 @@ TEST(Origin, AnAuditJudgesAListFromIt) {
   EXPECT_EQ(answer(run_audit(request, {})).audit->verdict, AuditVerdict::kMissing);
 }
 
-/// K and M diagonal: the values are the quotients of their entries where M has one (by hand).
+/// The first two values of a diagonal pencil.
 void expect_first(const std::vector<double>& stiffness, const std::vector<double>& mass,
                   const std::vector<double>& values) {
   ModelFiles files;
-  Request request;
-  request.input.stiffness = files.matrix("K.mtx", diagonal(stiffness));
-  request.input.mass = files.matrix("M.mtx", diagonal(mass));
-  request.pencil = Pencil::kMass;
-  request.bracket.unit = ValueUnit::kOmega2;
+  Request request = diagonal_pencil(files, stiffness, mass);
   request.bracket.first = 2;
   const Outcome outcome = answer(run_bracket(request, {}));
   ASSERT_EQ(outcome.bracket->critical.size(), values.size());
