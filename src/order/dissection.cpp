@@ -17,7 +17,8 @@
 namespace stanchion {
 namespace {
 
-constexpr Index kWholeUpTo = 2'000;         // vertices that are ordered without a cut of ours
+constexpr Index kWholeUpTo = 500;           // vertices that are ordered without a cut of ours
+constexpr Index kQuickWholeUpTo = 2'000;    // the same of surfaces and of parts cut by cliques
 constexpr Index kScatteredWholeUpTo = 250;  // minimum degree breaks ties badly where numbers are scattered
 constexpr int kLevels =
     4;  // of cuts: 16 parts keep as many threads busy; thin and quick parts are cut further
@@ -30,7 +31,8 @@ struct Part {
   Index place = 0;
   bool whole = false;      ///< not to be cut further
   bool thin = false;       ///< a piece of a surface or a line: the cut that made it was short
-  bool quick = false;      ///< a cut costs little: the one that made it was found on a graph of cliques
+  bool quick = false;      ///< a cut costs little: the one that made it was by cliques or levels
+  double level_cost = 0;   ///< of the cut that made it, see Separation
   bool scattered = false;  ///< neighbours have far-off numbers
 };
 
@@ -87,7 +89,7 @@ bool is_scattered(const Graph& graph) {
 /// What a cut leaves: both sides, or the part itself as a whole one when there is no cut worth making.
 /// The separator's positions are the part's last.
 Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
-  auto separation = separate(part.graph);
+  auto separation = separate(part.graph, part.level_cost);
   if (!separation.ok()) return separation.status();
   std::array<std::vector<Index>, 3> chosen;
   for (std::size_t k = 0; k < separation->side.size(); ++k) {
@@ -111,7 +113,8 @@ Status cut(Part part, std::vector<Part>& left_over, Buffer<Index>& vertex_at) {
     half.graph = subgraph(part.graph, local, chosen[s].data(), static_cast<Index>(chosen[s].size()));
     half.place = place;
     half.thin = thin;
-    half.quick = separation->by_cliques;
+    half.quick = separation->by_cliques || separation->level_cost > 0;
+    half.level_cost = separation->level_cost;
     half.scattered = is_scattered(half.graph);
     place += half.graph.vertices;
     left_over.push_back(std::move(half));
@@ -139,7 +142,10 @@ Status for_all(ThreadPool* pool, std::size_t pieces, const Work& work) {
 }
 
 bool to_be_cut(const Part& part, int level) {
-  const Index whole_up_to = part.thin && part.scattered ? kScatteredWholeUpTo : kWholeUpTo;
+  const bool by_cliques = part.quick && part.level_cost == 0;
+  const Index whole_up_to = part.thin && part.scattered ? kScatteredWholeUpTo
+                            : part.thin || by_cliques   ? kQuickWholeUpTo
+                                                        : kWholeUpTo;
   return !part.whole && part.graph.vertices > whole_up_to && (level < kLevels || part.thin || part.quick);
 }
 

@@ -2,9 +2,13 @@
 
 #include <algorithm>
 #include <array>
+#include <cmath>
 #include <cstdlib>
+#include <limits>
+#include <numeric>
 
 #include "order/clique_graph.hpp"
+#include "order/level_separator.hpp"
 #include "order/metis_graph.hpp"
 
 namespace stanchion {
@@ -15,6 +19,9 @@ constexpr Index kCoarsenAbove = 1'000;  // vertices; a smaller graph is cut as s
 constexpr double kShrinks = 3.5;        // so many times at least: pairs and triples (of bars) mislead
 constexpr int kCoarser = 2;             // graphs below the finest
 constexpr double kHeaviest = 1.3;       // a side, in the mean of both
+constexpr double kWorthRefining = 1.1;  // cost of a level, in METIS's
+constexpr double kClearlyBetter = 0.9;  // the same, refined
+constexpr double kAsGood = 1.1;         // in the cost of the level that made the part
 /// The room a refinement has: less than a twentieth finds much larger separators.
 constexpr double kLeastRoom = 1.05, kMostRoom = 1.2;
 
@@ -44,33 +51,71 @@ Status separate_whole(MetisGraph& graph, std::vector<idx_t>& side) {
   return status == METIS_OK ? Status{} : metis_out_of_memory();
 }
 
-/// Fills `side`; true when the graph was made coarser first.
-Result<bool> separate(const Graph& graph, int coarser, std::vector<idx_t>& side) {
-  Grouping cliques;
-  if (coarser > 0 && graph.vertices > kCoarsenAbove) cliques = group_by_clique(graph, kCliqueMembers);
-  const bool shrinks = cliques.groups > 0 && cliques.groups * kShrinks <= graph.vertices;
-  if (shrinks) {
-    const Graph coarse = contract(graph, cliques);
-    std::vector<idx_t> side_of_clique(static_cast<std::size_t>(coarse.vertices));
-    auto separated = separate(coarse, coarser - 1, side_of_clique);
-    if (!separated.ok()) return separated;
-    for (Index v = 0; v < graph.vertices; ++v) {
-      side[static_cast<std::size_t>(v)] = side_of_clique[static_cast<std::size_t>(cliques.group_of[v])];
-    }
+/// Groups that make the graph much smaller; none otherwise.
+Grouping worthwhile_cliques(const Graph& graph) {
+  if (graph.vertices <= kCoarsenAbove) return {};
+  Grouping cliques = group_by_clique(graph, kCliqueMembers);
+  if (cliques.groups * kShrinks > graph.vertices) return {};
+  return cliques;
+}
+
+Status separate_by_cliques(const Graph& graph, const Grouping& cliques, int coarser,
+                           std::vector<idx_t>& side);
+
+/// Fills `side`, on coarser graphs first where that pays.
+Status separate_coarse(const Graph& graph, int coarser, std::vector<idx_t>& side) {
+  const Grouping cliques = coarser > 0 ? worthwhile_cliques(graph) : Grouping{};
+  if (cliques.groups > 0) return separate_by_cliques(graph, cliques, coarser, side);
+  MetisGraph same(graph);
+  return separate_whole(same, side);
+}
+
+Status separate_by_cliques(const Graph& graph, const Grouping& cliques, int coarser,
+                           std::vector<idx_t>& side) {
+  const Graph coarse = contract(graph, cliques);
+  std::vector<idx_t> side_of_clique(static_cast<std::size_t>(coarse.vertices));
+  Status done = separate_coarse(coarse, coarser - 1, side_of_clique);
+  if (!done.ok()) return done;
+  for (Index v = 0; v < graph.vertices; ++v) {
+    side[static_cast<std::size_t>(v)] = side_of_clique[static_cast<std::size_t>(cliques.group_of[v])];
   }
   MetisGraph same(graph);
-  Status done = shrinks ? refine(same, side) : separate_whole(same, side);
-  if (!done.ok()) return done;
-  return shrinks;
+  return refine(same, side);
+}
+
+/// METIS's separator, or a level where that costs less.
+Result<Separation> separate_by_metis_or_level(const Graph& graph, double level_cost) {
+  const double power = std::pow(std::accumulate(graph.weight.begin(), graph.weight.end(), 0.0), 2.0 / 3);
+  MetisGraph same(graph);
+  std::vector<idx_t> side(static_cast<std::size_t>(graph.vertices)), level = level_separator(graph);
+  const double unrefined = separator_cost(graph, level);
+  double cost = std::numeric_limits<double>::infinity();
+  if (unrefined > kAsGood * level_cost * power) {
+    Status done = separate_whole(same, side);
+    if (!done.ok()) return done;
+    cost = separator_cost(graph, side);
+  }
+  Separation found;
+  if (unrefined < kWorthRefining * cost) {
+    Status done = refine(same, level);
+    if (!done.ok()) return done;
+    const double refined = separator_cost(graph, level);
+    if (refined < kClearlyBetter * cost) found.level_cost = refined / power;
+    if (refined < cost) side = std::move(level);
+  }
+  found.side.assign(side.begin(), side.end());
+  return found;
 }
 
 }  // namespace
 
-Result<Separation> separate(const Graph& graph) {
+Result<Separation> separate(const Graph& graph, double level_cost) {
+  const Grouping cliques = worthwhile_cliques(graph);
+  if (cliques.groups == 0) return separate_by_metis_or_level(graph, level_cost);
   std::vector<idx_t> side(static_cast<std::size_t>(graph.vertices));
-  auto by_cliques = separate(graph, kCoarser, side);
-  if (!by_cliques.ok()) return by_cliques.status();
-  return Separation{{side.begin(), side.end()}, *by_cliques};
+  Status done = separate_by_cliques(graph, cliques, kCoarser, side);
+  if (!done.ok()) return done;
+  return Separation{{side.begin(), side.end()}, true, 0};
 }
 
 }  // namespace stanchion

@@ -41,7 +41,7 @@ TEST(Certify, LargeIndefiniteTakesTheRelativeTestAndChargesIt) {
   CertifyOptions options;
   options.risk = &risk;
   options.most_factor_bytes = Offset{1} << 40;
-  const auto found = certify(prepare(laplacian(36, 35, 34, 0.41), 2), options);
+  const auto found = certify(prepare(laplacian(42, 40, 39, 0.41), 2), options);
   EXPECT_EQ(found.factorizations, 1);
   EXPECT_EQ(found.certificate.level, Level::kStatistical);
   EXPECT_GT(risk.spent(), 0);
@@ -122,7 +122,7 @@ TEST(Certify, TheLikelyWorkIsWhatIsDone) {
   };
   const Offset plenty = Offset{1} << 40;
   Expected cases[] = {{laplacian(20, 20, 20), true, plenty, 1, false},
-                      {laplacian(36, 35, 34, 0.41), false, plenty, 1, true},
+                      {laplacian(42, 40, 39, 0.41), false, plenty, 1, true},
                       {laplacian(9, 8, 7, 0.5), false, 1000, 2, false},
                       {laplacian(9, 8, 7, 0.5), false, plenty, 2, false}};
   for (const Expected& expected : cases) {

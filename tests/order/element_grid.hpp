@@ -1,9 +1,14 @@
-// Graphs of nodes as finite elements make them: every node of an element is coupled with all the others.
+// Graphs of nodes as finite elements make them: every node of an element is coupled with all the others,
+// every node of a bar with the one at its other end.
 #pragma once
 
 #include <algorithm>
 
 #include "order/brute_force.hpp"
+#include "order/components.hpp"
+#include "order/permutation.hpp"
+#include "order/quotient_graph.hpp"
+#include "support/generators.hpp"
 
 namespace stanchion::test {
 
@@ -52,6 +57,21 @@ inline Graph element_grid(Index nx, Index ny, Index nz) {
 /// The same, its nodes numbered at random.
 inline Graph element_grid(Random& random, Index nx, Index ny, Index nz) {
   return element_grid(nx, ny, nz, random_permutation(random, nx * ny * nz));
+}
+
+/// nx by ny by nz nodes, each joined by bars with the up to six beside it.
+inline Graph bar_lattice(Index nx, Index ny, Index nz) {
+  const SymmetricMatrix box = laplacian(nx, ny, nz);
+  Grouping alone{box.rows, Buffer<Index>(box.rows)};
+  std::iota(alone.group_of.begin(), alone.group_of.end(), 0);
+  return quotient_graph(box, alone);
+}
+
+/// The same, its nodes numbered at random.
+inline Graph bar_lattice(Random& random, Index nx, Index ny, Index nz) {
+  const Graph in_rows = bar_lattice(nx, ny, nz);
+  const Buffer<Index> number = random_permutation(random, in_rows.vertices);
+  return subgraph(in_rows, number, inverse_of(number).begin(), in_rows.vertices);
 }
 
 }  // namespace stanchion::test
