@@ -432,8 +432,9 @@ class ResidualBrackets {
     std::optional<CountFact> low, high;
     const CountFact zero = counter_.fact_at_origin();
     const GroupSides shown = proof_.groups_inside(pairs, counter_.two_sided() ? -end : start_, end);
+    const double next = many < found.list.size() ? std::fabs(found.list[many].theta) : 0;
     if (side != Side::kNegative) {
-      auto counted = proof_.count_expecting(end, GroupSides::number(shown.above));
+      auto counted = proof_.count_expecting(end, GroupSides::number(shown.above), pairs, next);
       if (!counted.ok()) return counted.status();
       high = *counted;
     } else {
@@ -441,7 +442,7 @@ class ResidualBrackets {
     }
     if (counter_.two_sided()) low = zero;
     if (side != Side::kPositive) {
-      auto counted = proof_.count_expecting(-end, GroupSides::number(shown.below));
+      auto counted = proof_.count_expecting(-end, GroupSides::number(shown.below), pairs, -next);
       if (!counted.ok()) return counted.status();
       low = *counted;
     }

@@ -105,9 +105,11 @@ Result<CertifiedInertia> PreparedPencil::certify(double factor, bool definite_fi
   return run(combination(factor), options, pool, outcome);
 }
 
-Result<CertifiedInertia> PreparedPencil::certify_positive_side(double factor, Index all_but, ThreadPool& pool,
+Result<CertifiedInertia> PreparedPencil::certify_positive_side(double factor, Index all_but,
+                                                               std::optional<double> offset, ThreadPool& pool,
                                                                Outcome& outcome) {
   OffsetOptions options;
+  options.resolution = offset;
   options.all_positive_but = all_but;
   options.factor = factor_options_;
   auto found = certify_by_offsets(analysis_, combination(factor), options, pool);

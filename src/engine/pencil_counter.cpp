@@ -9,6 +9,9 @@
 namespace stanchion {
 namespace {
 
+/// Of an estimate of the smallest positive eigenvalue, what is taken as an offset.
+constexpr double kPartOfRoom = 0x1p-2;
+
 std::string number_text(double value) {
   char text[32];
   std::snprintf(text, sizeof(text), "%.10g", value);
@@ -372,10 +375,12 @@ Result<ShiftCount> PencilCounter::count(double shift) {
 }
 
 /// All but k are positive at the shift, so at most k are not.
-Result<std::optional<Index>> PencilCounter::at_most(double shift, Index expected) {
+Result<std::optional<Index>> PencilCounter::at_most(double shift, Index expected,
+                                                    std::optional<double> room) {
   if (kind_at(shift) == CountKind::kDirections) return std::optional<Index>{};
-  auto found =
-      pencil_->certify_positive_side(factor_of(shift), expected + negative_on_massless_, pool_, outcome_);
+  if (room) *room *= kPartOfRoom;
+  auto found = pencil_->certify_positive_side(factor_of(shift), expected + negative_on_massless_, room, pool_,
+                                              outcome_);
   if (!found.ok()) return found.status();
   if (found->certificate.level == Level::kNone) return std::optional<Index>{};
   return std::optional(std::max<Index>(0, found->inertia.undecided - negative_on_massless_));

@@ -52,8 +52,9 @@ class PencilCounter {
 
   /// At most how many values lie between the origin and `shift` (kBelow: below it), or at the shift itself;
   /// nothing where none is certified, or counts are not of values. Half the cost of count() when `expected`
-  /// is the number.
-  Result<std::optional<Index>> at_most(double shift, Index expected);
+  /// is the number. `room`: an estimate of the smallest positive eigenvalue there, in units of the scaled
+  /// matrix.
+  Result<std::optional<Index>> at_most(double shift, Index expected, std::optional<double> room);
 
   /// As count(), with a risk of its own, as event `number` of the document (from 1, each used once);
   /// everything is booked in `scratch`. For shifts side by side, each with a pool of its own; `share` of the

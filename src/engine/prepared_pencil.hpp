@@ -45,9 +45,10 @@ class PreparedPencil {
                                    Outcome& outcome);
 
   /// How many eigenvalues are positive for certain, from one factorization where all but `all_but` are; the
-  /// others are undecided. By an offset in double precision.
-  Result<CertifiedInertia> certify_positive_side(double factor, Index all_but, ThreadPool& pool,
-                                                 Outcome& outcome);
+  /// others are undecided. By an offset in double precision: `offset`, in units of the scaled matrix, where
+  /// it is known to be below the positive ones; another one where it is too small.
+  Result<CertifiedInertia> certify_positive_side(double factor, Index all_but, std::optional<double> offset,
+                                                 ThreadPool& pool, Outcome& outcome);
 
   /// As certify(), with a risk of its own: what event `number` of the document may fail with. Safe to call
   /// side by side, each call with its own `pool` and `scratch`; each may keep a factor in one of `share`

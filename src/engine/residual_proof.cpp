@@ -93,9 +93,28 @@ std::pair<double, double> ResidualProof::values_of(const EigenvalueGroup& group)
   return {outwards(low - base_->tau, low, -1), outwards(high - base_->tau, high, 1)};
 }
 
-Result<std::optional<CountFact>> ResidualProof::count_expecting(double shift, Offset expected) {
+/// A = B - (shift + tau) C, so that a vector with C x = theta B x has x^T A x = (1 - (shift + tau) theta)
+/// x^T B x. Vectors behind the shift have an x^T B x / x^T x about as small as the half of the pairs nearest
+/// to it.
+std::optional<double> ResidualProof::room_at(double shift, const std::vector<ResidualPair>& pairs,
+                                             double next) const {
+  std::vector<std::pair<double, double>> roots;
+  for (const ResidualPair& pair : pairs) {
+    if (pair.theta * next > 0) roots.emplace_back(std::fabs(pair.theta), pair.norm / pair.length);
+  }
+  std::sort(roots.begin(), roots.end());
+  double least = INFINITY;
+  for (std::size_t k = 0; 2 * k < roots.size(); ++k) least = std::min(least, roots[k].second);
+  const double room = least * least * (1 - (shift + base_->tau) * next);
+  if (next == 0 || !std::isfinite(room) || !(room > 0)) return std::nullopt;
+  return room;
+}
+
+Result<std::optional<CountFact>> ResidualProof::count_expecting(double shift, Offset expected,
+                                                                const std::vector<ResidualPair>& pairs,
+                                                                double next) {
   if (counts_.at(shift)) return count_at(shift);
-  auto most = counter_.at_most(shift, static_cast<Index>(expected));
+  auto most = counter_.at_most(shift, static_cast<Index>(expected), room_at(shift, pairs, next));
   if (!most.ok()) return most.status();
   if (*most && **most < expected) return too_many();
   if (!*most || **most > expected) return count_at(shift);

@@ -34,8 +34,10 @@ class ResidualProof {
   Result<std::optional<CountFact>> count_at(double shift);
 
   /// The number at `shift`, when so many as `expected` were shown on its side already: no more than that is
-  /// then all that is left to show. Otherwise it is counted.
-  Result<std::optional<CountFact>> count_expecting(double shift, Offset expected);
+  /// then all that is left to show. Otherwise it is counted. `next`: an estimate of the theta of the value
+  /// behind the shift, by which, with `pairs` before it, the room to count in is judged; 0 where unknown.
+  Result<std::optional<CountFact>> count_expecting(double shift, Offset expected,
+                                                   const std::vector<ResidualPair>& pairs, double next);
 
   /// Whether the interval of a value holds `end`: it cannot tell on which side the value lies.
   bool held_by_one(const std::vector<ResidualPair>& pairs, double end) const;
@@ -52,6 +54,7 @@ class ResidualProof {
  private:
   std::pair<double, double> values_of(const EigenvalueGroup& group) const;
   Result<std::optional<CountFact>> remember(const CountFact& fact);
+  std::optional<double> room_at(double shift, const std::vector<ResidualPair>& pairs, double next) const;
   FoundValues found_of(const std::vector<ResidualPair>& pairs, const EigenvalueGroup& group) const;
   void sharpen_all(const std::vector<ResidualPair>& pairs, double from, double to, GroupSides& sides) const;
 
