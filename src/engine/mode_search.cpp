@@ -156,6 +156,7 @@ Result<bool> ModeSearch::start_inside(double from, double to, Index wanted) {
 void ModeSearch::make_space(BlockLanczos::Operator apply, Index wanted, const KeptValues& keep) {
   constexpr Index kV = kBlockVectors;
   wanted_ = wanted;
+  leading_ = 0;
   keep_ = keep;
   const Index order = rows_.rows();
   work_.resize(static_cast<std::size_t>(order) * static_cast<std::size_t>(kV));
@@ -197,6 +198,7 @@ Candidates ModeSearch::candidates(Side side) {
     }
   }
   while (found.leading < found.list.size() && found.list[found.leading].close) ++found.leading;
+  leading_ = found.leading;
   return found;
 }
 
@@ -218,6 +220,12 @@ double ModeSearch::largest() {
   return all.empty() ? 0 : std::fabs(all.front().value);
 }
 
+/// A look costs columns^3, and a step too many the time of a solve: near the end every step is looked at.
+Index ModeSearch::steps_to_next_look() const {
+  if (2 * leading_ > static_cast<std::size_t>(wanted_)) return 1;
+  return std::max<Index>(2, lanczos_->columns() / 100);
+}
+
 Result<bool> ModeSearch::iterate(const std::function<bool()>& enough) {
   const Index most_steps = lanczos_->steps() + 40 + wanted_;
   Index next_look = lanczos_->steps() + std::max<Index>(3, wanted_ / kBlockVectors);
@@ -229,7 +237,7 @@ Result<bool> ModeSearch::iterate(const std::function<bool()>& enough) {
     if (more && lanczos_->steps() < next_look) continue;
     if (enough()) return true;
     if (!more) return false;
-    next_look = lanczos_->steps() + std::max<Index>(2, lanczos_->columns() / 100);  // a look costs columns^3
+    next_look = lanczos_->steps() + steps_to_next_look();
   }
 }
 

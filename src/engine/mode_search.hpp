@@ -67,6 +67,7 @@ class ModeSearch {
   double closeness() const;
   bool squares() const;
   bool interrupted() const;
+  Index steps_to_next_look() const;
   void refine(ResidualWork& work, std::vector<ResidualPair>& pairs);
 
   PencilCounter& counter_;
@@ -82,7 +83,8 @@ class ModeSearch {
   std::optional<BlockLanczos> lanczos_;
   std::vector<double> work_;
   Index wanted_ = 0;
-  bool strict_ = false;  ///< no use is made of what gaps add to a residual
+  std::size_t leading_ = 0;  ///< close enough when last looked at
+  bool strict_ = false;      ///< no use is made of what gaps add to a residual
   KeptValues keep_;
 };
 

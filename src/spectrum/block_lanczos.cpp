@@ -217,13 +217,12 @@ void BlockLanczos::orthonormalise(double* block, std::vector<double>* triangle) 
     // block := block R^-1, columns without a pivot zero; the second round mends what the inverse loses.
     const std::vector<double> inverse = inverse_of(r);
     for_pieces([&](Offset begin, Offset end, Offset) {
-      for (Offset i = begin; i < end; ++i) {
-        double* row = block + i * kV;
-        double sum[kV] = {};
-        for (Index k = 0; k < kV; ++k) {
-          for (Index j = 0; j < kV; ++j) sum[j] += row[k] * inverse[at(k * kV + j)];
-        }
-        std::copy(sum, sum + kV, row);
+      for (Offset row = begin; row < end; row += kRows) {
+        const auto rows = static_cast<Index>(std::min(kRows, end - row));
+        double sums[kRows * kV] = {};
+        block_kernels().of_double.transposed_times_block(block + row * kV, kV, kV, rows, inverse.data(),
+                                                         sums);
+        std::copy_n(sums, rows * kV, block + row * kV);
       }
     });
     if (!replaced) {
