@@ -243,13 +243,14 @@ Result<bool> ModeSearch::iterate(const std::function<bool()>& enough) {
 
 Result<std::vector<ResidualPair>> ModeSearch::pairs_of(const std::vector<Candidate>& list, std::size_t many) {
   std::vector<ResidualPair> pairs;
-  ResidualWork work(base_.base, base_.second);
+  ResidualWork work(base_.base, base_.second, request_.bracket.want_modes);
   constexpr auto kV = static_cast<std::size_t>(kBlockVectors);
   for (std::size_t first = 0; first < many; first += kV) {
     if (interrupted()) return Status::interrupted();
     std::vector<RitzValue> chosen;
     for (std::size_t k = first; k < std::min(first + kV, many); ++k) chosen.push_back(list[k].ritz);
-    append(pairs, work.pairs(lanczos_->vectors(chosen), static_cast<Index>(chosen.size())));
+    lanczos_->vectors(chosen, work_);
+    append(pairs, work.pairs(work_, static_cast<Index>(chosen.size())));
   }
   // A step of inverse iteration towards the largest would lead away from values inside.
   const double expected = squares() ? worst_expected(pairs, closeness()) : worst(pairs);

@@ -16,8 +16,8 @@ double separator_cost(const Graph& graph, const std::vector<idx_t>& side);
 
 /// The level that costs least among those which leave each side at least three tenths of the weight. The
 /// search starts at the end of a longest path it can find (George and Liu, 1979): a corner. In a lattice of
-/// bars the levels seen from a corner are sloping planes, a quarter smaller than straight ones. Empty when the
-/// graph is not connected or no level qualifies. Cost: some four passes over the graph. Reproducible.
+/// bars the levels seen from a corner are sloping planes, a quarter smaller than straight ones. Empty when
+/// the graph is not connected or no level qualifies. Cost: some four passes over the graph. Reproducible.
 std::vector<idx_t> level_separator(const Graph& graph);
 
 }  // namespace stanchion

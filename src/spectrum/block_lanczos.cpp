@@ -331,7 +331,7 @@ const std::vector<RitzValue>& BlockLanczos::ritz_values() {
   return ritz_;
 }
 
-std::vector<double> BlockLanczos::vectors(const std::vector<RitzValue>& chosen) const {
+void BlockLanczos::vectors(const std::vector<RitzValue>& chosen, std::vector<double>& block) const {
   const auto m = columns_;
   std::vector<double> coefficients(at(Offset{m} * kV), 0.0);
   for (std::size_t v = 0; v < chosen.size() && v < at(kV); ++v) {
@@ -339,12 +339,11 @@ std::vector<double> BlockLanczos::vectors(const std::vector<RitzValue>& chosen) 
               rotation_.begin() + Offset{chosen[v].column + 1} * m,
               coefficients.begin() + static_cast<Offset>(v) * m);
   }
-  std::vector<double> block(at(Offset{rows_} * kV), 0.0);
+  block.resize(at(Offset{rows_} * kV));
   for_pieces([&](Offset begin, Offset end, Offset) {
     gemm_tn(kV, static_cast<Index>(end - begin), m, 1, coefficients.data(), m,
             basis_.data() + begin * most_columns_, most_columns_, 0, block.data() + begin * kV, kV);
   });
-  return block;
 }
 
 /// The basis becomes its `keep` best approximations, in place; what couples them to the next block is found

@@ -54,8 +54,8 @@ class BlockLanczos {
   /// space once.
   const std::vector<RitzValue>& ritz_values();
 
-  /// Up to eight approximate eigenvectors as a block, columns beyond them zero. Call ritz_values() before.
-  std::vector<double> vectors(const std::vector<RitzValue>& chosen) const;
+  /// block := up to eight approximate eigenvectors, columns beyond them zero. Call ritz_values() before.
+  void vectors(const std::vector<RitzValue>& chosen, std::vector<double>& block) const;
 
   /// The space is everything there is: nothing can have been missed.
   bool whole() const { return whole_; }

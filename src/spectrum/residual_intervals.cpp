@@ -86,9 +86,10 @@ double gram_defect(const DefiniteBase& base, const std::vector<ResidualPair>& pa
   return 1.001 * (std::sqrt(deviation) + base.relative() * (y + h) * (y + h) + 2 * y * h + h * h);
 }
 
-ResidualWork::ResidualWork(DefiniteBase& base, const ShiftedMatrix& second)
+ResidualWork::ResidualWork(DefiniteBase& base, const ShiftedMatrix& second, bool keep_vectors)
     : base_(base),
       second_(second),
+      keep_vectors_(keep_vectors),
       base_size_(absolute_norm(base.matrix(), base.pool())),
       second_size_(absolute_norm(second, base.pool())) {
   const std::size_t size = static_cast<std::size_t>(base.rows()) * kV;
@@ -143,7 +144,7 @@ std::vector<ResidualPair> ResidualWork::pairs(const std::vector<double>& coordin
     const auto v = static_cast<std::size_t>(column);
     pairs[v].coordinates = column_of(coordinates, v);
     pairs[v].residual_coordinates = column_of(z, v);
-    pairs[v].vector = column_of(x_, v);
+    if (keep_vectors_) pairs[v].vector = column_of(x_, v);
   });
   return pairs;
 }
@@ -189,8 +190,9 @@ std::vector<std::vector<double>> ResidualWork::refined_coordinates(const std::ve
     return block;
   };
   in_blocks([&](std::size_t first, std::size_t count) {
-    const std::vector<double> old = gather(
-        [&](std::size_t p) -> const auto& { return pairs[p].vector; }, first, count);
+    std::vector<double> old = gather(
+        [&](std::size_t p) -> const auto& { return pairs[p].coordinates; }, first, count);
+    base_.transposed_solve(old.data());
     multiply(old.data());
     for (std::size_t i = 0; i < rows; ++i) {
       for (std::size_t v = 0; v < count; ++v) cx_[i * kV + v] -= pairs[first + v].theta * bx_[i * kV + v];

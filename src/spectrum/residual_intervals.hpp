@@ -21,7 +21,7 @@ struct ResidualPair {
   double length = 0;                ///< of x itself
   std::vector<double> coordinates;  ///< y of x = M^-T y
   std::vector<double> residual_coordinates;  ///< M^-1 r as computed, r = C x - theta B x
-  std::vector<double> vector;                ///< x, in elimination order, of the scaled matrix
+  std::vector<double> vector;                ///< x, in elimination order, of the scaled matrix, where asked
 };
 
 /// B and C of a pencil with what residuals of many pairs need again and again: their sizes, and memory for
@@ -29,7 +29,8 @@ struct ResidualPair {
 /// matrix; memory: eight blocks of eight vectors.
 class ResidualWork {
  public:
-  ResidualWork(DefiniteBase& base, const ShiftedMatrix& second);
+  /// `keep_vectors`: whether pairs hold their vectors.
+  ResidualWork(DefiniteBase& base, const ShiftedMatrix& second, bool keep_vectors);
 
   /// Pairs from `coordinates`, a block of approximate eigenvectors of M^-1 C M^-T (the first `count` columns;
   /// the others are not looked at). theta is the Rayleigh quotient. Products with the data are extended,
@@ -47,6 +48,7 @@ class ResidualWork {
 
   DefiniteBase& base_;
   const ShiftedMatrix& second_;
+  bool keep_vectors_;
   AbsoluteNorm base_size_, second_size_;
   Buffer<double> product_memory_;
   LongVector<double> x_, bx_, cx_;

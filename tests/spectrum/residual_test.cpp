@@ -28,12 +28,13 @@ std::vector<ResidualPair> pairs_with_noise(const KnownPencil& known, PencilParts
   std::normal_distribution<double> gauss;
   std::vector<ResidualPair> pairs;
   const ShiftedMatrix second = parts.second();
-  ResidualWork residuals(base, second);
+  ResidualWork residuals(base, second, false);
   for (std::size_t first = 0; first < all.size(); first += kBlockVectors) {
     const std::vector<RitzValue> chosen(
         all.begin() + static_cast<long>(first),
         all.begin() + static_cast<long>(std::min(first + kBlockVectors, all.size())));
-    std::vector<double> block = lanczos.vectors(chosen);
+    std::vector<double> block;
+    lanczos.vectors(chosen, block);
     for (double& entry : block) entry += noise * gauss(random);
     for (ResidualPair& pair : residuals.pairs(block, static_cast<Index>(chosen.size()))) {
       pairs.push_back(std::move(pair));
@@ -102,7 +103,7 @@ TEST(ResidualIntervals, RefiningMakesThemTighter) {
   double before = 0, after = 0;
   for (const ResidualPair& pair : rough) before = std::max(before, pair.radius);
   const ShiftedMatrix second = parts.second();
-  ResidualWork work(base, second);
+  ResidualWork work(base, second, false);
   const auto better = work.refined_coordinates(rough);
   ASSERT_EQ(better.size(), rough.size());
   for (const auto& coordinates : better) {
@@ -185,7 +186,8 @@ TEST(SharperIntervals, RestOnTheNumberBeingRight) {
   for (std::size_t i = 0; i < 4; ++i)
     block[i * kBlockVectors] = pairs[1].coordinates[i] + pairs[2].coordinates[i];
   const ShiftedMatrix second = parts.second();
-  std::vector<ResidualPair> three{pairs[0], ResidualWork(base, second).pairs(block, 1).front(), pairs[3]};
+  std::vector<ResidualPair> three{pairs[0], ResidualWork(base, second, false).pairs(block, 1).front(),
+                                  pairs[3]};
   auto groups = disjoint_groups(base, three);
   ASSERT_EQ(groups.size(), 3u);
   sharpen(base, three, -HUGE_VAL, HUGE_VAL, groups);
@@ -224,7 +226,7 @@ TEST(ResidualIntervals, CountTheMembersOfASum) {
   std::vector<double> coordinates(kBlockVectors, 0.0);
   coordinates.front() = 1;
   const ShiftedMatrix second{&parts.family, coefficients, &parts.scale, 0};
-  const ResidualPair pair = ResidualWork(**base, second).pairs(coordinates, 1).front();
+  const ResidualPair pair = ResidualWork(**base, second, false).pairs(coordinates, 1).front();
   const double size = 2.0 * kMembers * static_cast<double>(kFactor) * static_cast<double>(kEntry);
   const double error = std::fabs(pair.theta - static_cast<double>(exact));
   EXPECT_GT(error, 100 * 0x1p-106 * size);
