@@ -139,6 +139,8 @@ class Bracketer {
       }
       return false;
     }
+    const CountFact* at_zero = known_.at(0);
+    answer->found->none_at_zero = at_zero != nullptr && at_zero->exact();
     take(*answer->found);
     answer_.more_than_asked = answer->more_than_asked;
     say_number_found(answer->fewer_than_asked);
@@ -221,7 +223,8 @@ class Bracketer {
       critical.level = values.level;
       critical.proof = values.proof;
       if (values.level == Level::kStatistical) critical.failure_probability = values.failure_probability;
-      critical.rigid_body = request_.pencil == Pencil::kMass && values.low <= 0 && values.high >= 0;
+      critical.rigid_body =
+          request_.pencil == Pencil::kMass && !found.none_at_zero && values.low <= 0 && values.high >= 0;
       if (critical.rigid_body) critical.value = 0;
       critical.modes = values.modes;
       answer_.critical.push_back(std::move(critical));

@@ -35,6 +35,8 @@ class Bisection {
       if (Status status = take_in_clusters(begin, end); !status.ok()) return status;
     }
     collect(begin, end, found);
+    const CountFact* at_zero = staircase_.at(0);
+    found.none_at_zero = at_zero != nullptr && at_zero->exact();
     complete(range, begin, end, found);
     return found;
   }

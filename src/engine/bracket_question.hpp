@@ -31,6 +31,7 @@ void within_document(std::optional<double>& failure_probability, const Outcome& 
 struct FoundRange {
   std::vector<FoundValues> values;
   std::optional<CountedRange> complete;
+  bool none_at_zero = false;  ///< an exact count at 0 shows that no value is 0
 };
 
 /// The range that counts can speak of: where they are of the values between 0 and a shift, whatever the

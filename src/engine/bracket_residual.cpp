@@ -32,6 +32,7 @@ class ResidualBrackets {
     auto base = settle_base(counter_, request_, context_, count, pool_, outcome_);
     if (!base.ok()) return base.status();
     if (!*base) return std::move(answer_);
+    if ((**base).at_zero) answer_.counts.add(*(**base).at_zero);
     start_ = 0 - (**base).tau;
     stand_on(std::move(**base));
     auto found = question_.first ? bracket_first() : bracket_range();

@@ -15,6 +15,7 @@ struct SpectralBase {
   ShiftedMatrix second;  ///< C: -G or G, or M, scaled
   double tau = 0;
   Index rigid = 0;  ///< zeros of a free body, as the count at 0 tells them apart from the rest
+  std::optional<CountFact> at_zero = std::nullopt;  ///< that count, where one was made
 
   double shift_of(double theta) const { return 1 / theta - tau; }
   double theta_of(double shift) const { return 1 / (shift + tau); }

@@ -106,5 +106,37 @@ TEST(Origin, WithoutElasticValuesTheOthersStayNarrow) {
   expect_first({-3, 0, 5, 7}, {1, 1, 0, 0}, {-3, 0});
 }
 
+/// The values of K = (1, 1 - d; 1 - d, 1), -1, 3, 5 and M = I are d and 2 - d, -1, 3, 5, exactly as the
+/// numbers are stored (by hand).
+Outcome lowest_beside(double d, BracketMethod method) {
+  ModelFiles files;
+  Request request = diagonal_pencil(files, {1}, std::vector<double>(5, 1.0));
+  request.input.stiffness = files.matrix(
+      "K.mtx", from_triplets(5, {{0, 0, 1}, {1, 0, 1 - d}, {1, 1, 1}, {2, 2, -1}, {3, 3, 3}, {4, 4, 5}}));
+  request.bracket.first = 3;
+  request.bracket.method = method;
+  return answer(run_bracket(request, {}));
+}
+
+// Where K is counted not to be singular no value is a rigid body, however near to 0 its interval reaches.
+TEST(Origin, NoValueIsARigidBodyWhereTheCountAtZeroIsExact) {
+  int touching = 0;
+  for (const BracketMethod method : {BracketMethod::kResidual, BracketMethod::kCounts}) {
+    for (const double power : {-30, -34, -38, -42, -44}) {
+      const double d = std::exp2(power);
+      const Outcome outcome = lowest_beside(d, method);
+      ASSERT_EQ(outcome.bracket->critical.size(), 3U);
+      const CriticalValue& found = outcome.bracket->critical[1];
+      EXPECT_LE(found.low, d);
+      EXPECT_GE(found.high, d);
+      EXPECT_FALSE(found.rigid_body) << power;
+      EXPECT_NE(found.value, 0) << power;
+      touching += found.low <= 0 && found.high >= 0;
+    }
+    EXPECT_TRUE(lowest_beside(0, method).bracket->critical[1].rigid_body);
+  }
+  EXPECT_GT(touching, 0);  // else nothing was tried
+}
+
 }  // namespace
 }  // namespace stanchion::test
