@@ -50,6 +50,22 @@ TEST(BlockLanczos, ClustersAndBothSignsComeOut) {
   EXPECT_NEAR(ritz[8].value, 0.5, 1e-10);
 }
 
+// Forty values of 1 and a block of eight: fresh vectors are the whole space where that is small.
+TEST(BlockLanczos, FreshVectorsOfASmallSpaceAreAllOfIt) {
+  ThreadPool pool(1);
+  std::vector<double> values = ladder(900);
+  for (std::size_t k = 1; k < 40; ++k) values[k] = 1;
+  BlockLanczos lanczos = lanczos_of(values, 64, pool);
+  for (int k = 0; k < 6; ++k) ASSERT_TRUE(lanczos.step({16, 8}));
+  EXPECT_LT(lanczos.ritz_values()[39].value, 0.9);  // missed, and looked at
+  lanczos.inject();
+  EXPECT_TRUE(lanczos.whole());
+  const auto& ritz = lanczos.ritz_values();
+  ASSERT_EQ(ritz.size(), 900U);
+  for (std::size_t k = 0; k < 40; ++k) EXPECT_NEAR(ritz[k].value, 1, 1e-13);
+  EXPECT_NEAR(ritz[40].value, 1.0 / 41, 1e-13);
+}
+
 TEST(BlockLanczos, AFullBasisStartsAgainFromItsBest) {
   ThreadPool pool(1);
   BlockLanczos lanczos = lanczos_of(ladder(3000), 64, pool);
