@@ -50,6 +50,19 @@ TEST(Forecast, TheSecondsAreThoseOfTheLikelyWork) {
   EXPECT_DOUBLE_EQ(shifted.seconds, 2 * shifted.factorization_seconds);
 }
 
+// One more than two: the first of two offsets lies below the bound amid the spectrum (measured).
+TEST(Forecast, AShiftOfASweepByOffsetsTakesThreeFactorizations) {
+  ModelFiles files;
+  Request request;
+  request.threads = 1;
+  request.input.stiffness = files.matrix("K.mtx", laplacian(400, 400, 1));
+  const ForecastOutcome chosen = *answer(run_forecast(request, {})).forecast;
+  EXPECT_DOUBLE_EQ(chosen.seconds_side_by_side, 3 * chosen.factorization_seconds);
+  request.resolution = 1e-9;
+  const ForecastOutcome given = *answer(run_forecast(request, {})).forecast;
+  EXPECT_DOUBLE_EQ(given.seconds_side_by_side, 2 * given.factorization_seconds);
+}
+
 TEST(Forecast, AsManyShiftsOfASweepRunAtATimeAsTheMemoryHolds) {
   ModelFiles files;
   Request request;

@@ -40,8 +40,8 @@ TEST(Missed, InASmallModelTheWholeSpaceShowsThem) {
 }
 
 // The end behind them was counted, and fresh random vectors find more of them each time: how many depends on
-// rounding, so not all need do. By counts alone some 75 factorizations; without the second search four of five
-// are counted.
+// rounding, so not all need do. By counts alone some 75 factorizations; without the second search four of
+// five are counted.
 TEST(Missed, BeforeACountedEndTheyAreSoughtAgain) {
   int by_residuals = 0;
   for (const Index together : {14, 18, 26, 30, 38}) {
