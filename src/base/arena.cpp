@@ -11,6 +11,7 @@ namespace stanchion {
 namespace {
 
 constexpr Offset kAlign = 8;  // doubles in a cache line
+constexpr std::uintptr_t kLargePage = std::uintptr_t{2} << 20;
 
 double* reserve(Offset doubles) {
   void* memory = mmap(nullptr, static_cast<std::size_t>(doubles) * sizeof(double), PROT_READ | PROT_WRITE,
@@ -55,10 +56,11 @@ double* Arena::push(Offset count) {
 }
 
 void Arena::trim(Offset kept) {
-  constexpr std::uintptr_t kPage = 4096;
   const Offset stays = std::max(top_, kept);
   if (stays >= high_water_) return;
-  const auto begin = (reinterpret_cast<std::uintptr_t>(base_ + stays) + kPage - 1) / kPage * kPage;
+  // A large page given back in part is split: what is touched again comes in small ones.
+  const auto begin =
+      (reinterpret_cast<std::uintptr_t>(base_ + stays) + kLargePage - 1) / kLargePage * kLargePage;
   const auto end = reinterpret_cast<std::uintptr_t>(base_ + high_water_);
   if (begin < end) madvise(reinterpret_cast<void*>(begin), end - begin, MADV_DONTNEED);
   high_water_ = stays;

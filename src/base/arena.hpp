@@ -26,8 +26,8 @@ class Arena {
   /// Everything from `mark` up is free again.
   void pop_to(const double* mark);
 
-  /// Gives the pages above the top and above `kept` doubles back to the system; high_water() starts again
-  /// from the higher of the two, or stays below it.
+  /// Gives the pages above the top and above `kept` doubles back to the system, large pages as wholes;
+  /// high_water() starts again from the higher of the two, or stays below it.
   void trim(Offset kept = 0);
 
   double* top() const { return base_ + top_; }

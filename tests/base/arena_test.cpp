@@ -2,6 +2,7 @@
 
 #include <gtest/gtest.h>
 
+#include <algorithm>
 #include <cstdint>
 #include <new>
 #include <random>
@@ -84,6 +85,21 @@ TEST(Arena, TheAskedSizeIsAlwaysThere) {
       EXPECT_EQ(block[doubles - 1], 2);
     }
   }
+}
+
+TEST(Arena, TrimmingKeepsWhatIsInUseAndGivesTheRestBack) {
+  constexpr Offset kLargePage = Offset{2} << 17;  // in doubles
+  Arena arena(8 * kLargePage);
+  double* used = arena.push(1000);
+  double* beyond = arena.push(4 * kLargePage);
+  std::fill(used, beyond + 4 * kLargePage, 7.0);
+  arena.pop_to(beyond);
+  arena.trim();
+  EXPECT_EQ(arena.high_water(), 1000);
+  ASSERT_EQ(arena.push(4 * kLargePage), beyond);
+  EXPECT_EQ(std::count(used, used + 1000, 7.0), 1000);
+  // Pages that went back are empty when they return; at most one large page stayed.
+  EXPECT_LT(std::count(beyond, beyond + 4 * kLargePage, 7.0), kLargePage);
 }
 
 TEST(Arena, MovingTakesTheStackAlong) {
