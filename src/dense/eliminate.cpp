@@ -21,6 +21,19 @@ struct Panel {
   Index full_end;  ///< end of the columns in this block that were candidates at first
 };
 
+/// Sum of term(i) over [begin, end), in eight parts that do not wait for each other.
+template <class Scalar, class Term>
+Scalar sum_in_parts(Index begin, Index end, const Term& term) {
+  constexpr Index kSumParts = 8;
+  Scalar part[kSumParts] = {};
+  Index i = begin;
+  for (; i + kSumParts <= end; i += kSumParts) {
+    for (Index p = 0; p < kSumParts; ++p) part[p] += term(i + p);
+  }
+  for (Index p = 0; i + p < end; ++p) part[p] += term(i + p);
+  return ((part[0] + part[1]) + (part[2] + part[3])) + ((part[4] + part[5]) + (part[6] + part[7]));
+}
+
 template <class Scalar>
 class FrontEliminator {
  public:
@@ -275,32 +288,32 @@ class FrontEliminator {
   void inverse_weights(Index accepted, Scalar* column_sum_l, Scalar* weight) {
     const auto gamma = static_cast<Scalar>(2 * (accepted + 2) * Rounding<Scalar>::kUnit);
     for (Index k = 0; k < accepted; ++k) {
-      Scalar sum = 1;
-      for (Index i = k + 1; i < accepted; ++i) sum += std::fabs(tile()[i + Offset{k} * kTileWidth]);
-      column_sum_l[k] = sum;
+      const Scalar* column = tile() + Offset{k} * kTileWidth;
+      column_sum_l[k] =
+          1 + sum_in_parts<Scalar>(k + 1, accepted, [column](Index i) { return std::fabs(column[i]); });
     }
     for (Index k = 0; k < accepted; ++k) {
-      Scalar sum = 0;
-      for (Index i = k; i < accepted; ++i)
-        sum += std::fabs(inverse()[i + Offset{k} * kTileWidth]) * column_sum_l[i];
-      weight[k] = gamma * sum;
+      const Scalar* column = inverse() + Offset{k} * kTileWidth;
+      weight[k] = gamma * sum_in_parts<Scalar>(k, accepted, [column, column_sum_l](Index i) {
+                    return std::fabs(column[i]) * column_sum_l[i];
+                  });
     }
   }
 
   /// The same errors seen from the columns of the tile: row_error[j] += 2 gamma (s^T |X|^T |L11|^T)_j.
   void add_column_errors(Index at, Index accepted, const Scalar* operand_sums) {
     const auto gamma = static_cast<Scalar>(2 * (accepted + 2) * Rounding<Scalar>::kUnit);
-    Scalar through[kTileWidth];
+    Scalar through[kTileWidth] = {}, sum[kTileWidth];
+    for (Index k = 0; k < accepted; ++k) {
+      const Scalar* column = inverse() + Offset{k} * kTileWidth;
+      for (Index i = k; i < accepted; ++i) through[i] += operand_sums[k] * std::fabs(column[i]);
+    }
+    std::copy_n(through, accepted, sum);
     for (Index i = 0; i < accepted; ++i) {
-      through[i] = 0;
-      for (Index k = 0; k <= i; ++k)
-        through[i] += operand_sums[k] * std::fabs(inverse()[i + Offset{k} * kTileWidth]);
+      const Scalar* column = tile() + Offset{i} * kTileWidth;
+      for (Index j = i + 1; j < accepted; ++j) sum[j] += through[i] * std::fabs(column[j]);
     }
-    for (Index j = 0; j < accepted; ++j) {
-      Scalar sum = through[j];
-      for (Index i = 0; i < j; ++i) sum += through[i] * std::fabs(tile()[j + Offset{i} * kTileWidth]);
-      front_.row_error[at + j] += gamma * sum;
-    }
+    for (Index j = 0; j < accepted; ++j) front_.row_error[at + j] += gamma * sum[j];
   }
 
   /// Writes L11 into the front.
@@ -310,15 +323,13 @@ class FrontEliminator {
     for (Index k = 0; k < accepted; ++k) {
       const Scalar* source = tile() + Offset{k} * kTileWidth;
       Scalar* target = front_.matrix.column(at, at + k);
-      Scalar size = 1, signed_sum = sign[k];
-      for (Index i = k + 1; i < width; ++i) {
-        target[i] = source[i];
-        size += std::fabs(source[i]);
-        signed_sum += source[i] * sign[i];
-      }
       target[k] = 1;
-      sums[kSizes + k] += size;
-      sums[kSigned + k] += signed_sum;
+      std::copy(source + k + 1, source + width, target + k + 1);
+      sums[kSizes + k] +=
+          1 + sum_in_parts<Scalar>(k + 1, width, [source](Index i) { return std::fabs(source[i]); });
+      sums[kSigned + k] += sign[k] + sum_in_parts<Scalar>(k + 1, width, [source, sign](Index i) {
+                             return source[i] * sign[i];
+                           });
     }
   }
 

@@ -40,12 +40,16 @@ void FrontWorker<Scalar>::add_matrix_entries(const FrontRows& rows, const BlockL
   const MatrixFamily& family = *run_->matrix.family;
   const Index first = run_->analysis.tree.first_column[rows.front];
   const double offset = run_->matrix.offset;
+  const bool exact = run_->matrix.exact();
   for (Index j = 0; j < rows.own; ++j) {
     const Index position = first + j;
+    // The pivots of a front and its rows below ascend, so these entries lie in the lower triangle.
+    Scalar* column = matrix.column(j, j) - j;
+    Scalar sizes = 0, errors = 0;  // of the column
     for (Offset k = family.column_start[position]; k < family.column_start[Offset{position} + 1]; ++k) {
       const Index row = family.row[k], i = local_of_[row];
       double value = run_->matrix.entry(k, row, position);
-      double error = run_->matrix.entry_error(k, row, position);
+      double error = exact ? ShiftedMatrix::kExactError : run_->matrix.entry_error(k, row, position);
       if (i == j && offset != 0) {
         value -= offset;
         error += kUnit * std::fabs(value);
@@ -53,15 +57,16 @@ void FrontWorker<Scalar>::add_matrix_entries(const FrontRows& rows, const BlockL
       if constexpr (!std::is_same_v<Scalar, double>) {
         error += Rounding<Scalar>::kUnit * std::fabs(value) + Rounding<Scalar>::kLeast;
       }
-      // The pivots of a front and its rows below ascend, so this entry lies in the lower triangle.
-      matrix.at(i, j) = static_cast<Scalar>(value);
+      column[i] = static_cast<Scalar>(value);
       const auto size = static_cast<Scalar>(std::fabs(value)), off = static_cast<Scalar>(error);
+      sizes += size;
+      errors += off;
+      if (i == j) continue;
       addend_sums_[static_cast<std::size_t>(i)] += size;
       row_error_[static_cast<std::size_t>(i)] += off;
-      if (i == j) continue;
-      addend_sums_[static_cast<std::size_t>(j)] += size;
-      row_error_[static_cast<std::size_t>(j)] += off;
     }
+    addend_sums_[static_cast<std::size_t>(j)] += sizes;
+    row_error_[static_cast<std::size_t>(j)] += errors;
   }
 }
 

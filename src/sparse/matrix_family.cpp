@@ -165,7 +165,7 @@ MatrixFamily permute(const MatrixFamily& family, const Buffer<Index>& position_o
 
 double ShiftedMatrix::entry_error(Offset k, Index row, Index column) const {
   constexpr double kUnit = 0x1p-53, kTiny = 0x1p-1074;
-  if (exact()) return kTiny;
+  if (exact()) return kExactError;
   const double scaling = (*scale)[row] * (*scale)[column];
   // Scaled before it is multiplied by gamma, which could make it vanish.
   double magnitude = 0;

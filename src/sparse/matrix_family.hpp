@@ -85,6 +85,8 @@ struct ShiftedMatrix {
     return sum * ((*scale)[row] * (*scale)[column]);  // one exact power of two: at most one underflow
   }
 
+  /// Error of an exact entry: a possible underflow when scaling.
+  static constexpr double kExactError = 0x1p-1074;
   /// Bound on the rounding of entry(k): products, additions, and a possible underflow when scaling.
   double entry_error(Offset k, Index row, Index column) const;
 
