@@ -47,6 +47,7 @@ BenchArguments read_arguments(int argc, char** argv) {
   app.add_flag("--definite", a.definite, "no pivoting: the positive definite question");
   app.add_flag("--keep", a.keep, "keep the factor (default: discard it where the program can)");
   app.add_flag("--certified", a.certified, "ours: the certified inertia, with all factorizations it takes");
+  app.add_flag("--least-memory", a.least_memory, "ours: certify by offsets alone, which keep no factor");
   app.add_flag("--node-map", a.node_map, "ours: give the node of every equation to the ordering");
   app.add_flag("--our-order", a.our_order, "peers: use our elimination order");
   try {

@@ -19,6 +19,7 @@ struct BenchArguments {
   bool definite = false;             ///< Cholesky-like, stopping at the first pivot that is not positive
   bool keep = false;                 ///< keep the factor
   bool certified = false;            ///< ours: all factorizations of the certificate, not just one
+  bool least_memory = false;         ///< ours: no factor is kept, whatever that costs
   bool node_map = false;             ///< ours: tell the ordering which equations share a node
   bool our_order = false;            ///< peers: use our elimination order instead of their own
 };

@@ -55,7 +55,7 @@ void certify(const Analysis& analysis, const ShiftedMatrix& matrix, const BenchA
   CertifyOptions options;
   options.offsets.definite_first = arguments.definite;
   options.risk = &risk;
-  options.most_factor_bytes = kMostFactor;
+  options.most_factor_bytes = arguments.least_memory ? 0 : kMostFactor;
   constexpr Offset kEntriesOfVolumes = 30;  // as in engine/prepared_pencil.cpp
   if (matrix.family->entries() >= kEntriesOfVolumes * matrix.family->rows) {
     options.single = SingleUse::kWhereFaster;

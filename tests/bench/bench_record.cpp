@@ -18,6 +18,7 @@ void print_record(const BenchArguments& arguments, int repetition, const BenchRe
   line["pencil"] = arguments.pencil;
   line["shift"] = arguments.shift;
   line["factor_kept"] = arguments.keep;
+  line["least_memory"] = arguments.least_memory;
   line["node_map"] = arguments.node_map;
   line["our_order"] = arguments.our_order;
   line["threads"] = arguments.threads;

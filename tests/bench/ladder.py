@@ -60,11 +60,14 @@ FULL = [
 
 
 def contenders(question):
-    """(label, program, options): one factorization each, and ours with the whole certificate, without a dof map and
-    with one."""
+    """(label, program, options): one factorization each, and ours with the whole certificate, without a dof map, with
+    one, and with one and no factor kept."""
     yield "stanchion", "bench_factor", question.options
     yield "stanchion, certified", "bench_factor", question.options + ("--certified",)
     yield "stanchion, certified, nodes given", "bench_factor", question.options + ("--certified", "--node-map")
+    if not question.definite:
+        yield "stanchion, certified, no factor kept", "bench_factor", question.options + (
+            "--certified", "--node-map", "--least-memory")
     if question.definite:
         yield "CHOLMOD", "peer_cholmod", ()
         yield "CHOLMOD, our order", "peer_cholmod", ("--our-order",)
