@@ -58,8 +58,8 @@ class BaseSettler {
   }
 
   void take(DefiniteBase base, double tau) {
-    base_.emplace(SpectralBase{std::move(base), counter_.pencil().second(-counter_.factor_of(1)), tau, rigid_,
-                               at_zero_});
+    base_.emplace(
+        SpectralBase{std::move(base), counter_.pencil().second(-counter_.factor_of(1)), tau, rigid_});
   }
 
   /// K + tau M: tau = 0 where K is definite, else large enough, and of the size of the lowest values that are
@@ -185,8 +185,7 @@ Result<std::optional<SpectralBase>> base_at(PencilCounter& counter, double sigma
     return base.status();
   }
   if (!*base) return Nothing();
-  return Nothing(
-      SpectralBase{std::move(**base), counter.pencil().second(-counter.factor_of(1)), -sigma, 0, {}});
+  return Nothing(SpectralBase{std::move(**base), counter.pencil().second(-counter.factor_of(1)), -sigma, 0});
 }
 
 Result<std::optional<SpectralBase>> settle_base(PencilCounter& counter, const Request& request,

@@ -1,5 +1,8 @@
 #include "order/column_counts.hpp"
 
+#include "order/elimination_tree.hpp"
+#include "order/permutation.hpp"
+
 namespace stanchion {
 namespace {
 
@@ -70,6 +73,18 @@ double factor_flops(const Graph& graph, const Buffer<Index>& vertex_at, const Bu
     }
   }
   return flops;
+}
+
+double predicted_flops(const Graph& graph, const Buffer<Index>& vertex_at) {
+  const Buffer<Index> parent = elimination_tree(graph, vertex_at, inverse_of(vertex_at));
+  const Buffer<Index> post = postorder(parent);
+  const Buffer<Index> rank = inverse_of(post);
+  Buffer<Index> ordered(post.size()), ordered_parent(post.size());
+  for (Offset k = 0; k < post.size(); ++k) {
+    ordered[k] = vertex_at[post[k]];
+    ordered_parent[k] = parent[post[k]] < 0 ? -1 : rank[parent[post[k]]];
+  }
+  return factor_flops(graph, ordered, column_counts(graph, ordered, inverse_of(ordered), ordered_parent));
 }
 
 }  // namespace stanchion

@@ -15,4 +15,8 @@ Buffer<Offset> column_counts(const Graph& graph, const Buffer<Index>& vertex_at,
 /// leading order. A vertex of weight w stands for w columns that shrink by one each.
 double factor_flops(const Graph& graph, const Buffer<Index>& vertex_at, const Buffer<Offset>& count);
 
+/// Operations of the factorization in this order, which need not be a postorder. Cost: elimination tree and
+/// column counts.
+double predicted_flops(const Graph& graph, const Buffer<Index>& vertex_at);
+
 }  // namespace stanchion

@@ -10,7 +10,6 @@
 #include "order/column_counts.hpp"
 #include "order/components.hpp"
 #include "order/dissection.hpp"
-#include "order/elimination_tree.hpp"
 #include "order/minimum_degree.hpp"
 #include "order/permutation.hpp"
 
@@ -28,19 +27,6 @@ constexpr double kSaving = 0.1;
 /// Dissection takes as long as so many operations of a small factorization for each neighbour of a vertex
 /// (measured); where minimum degree needs fewer than that, and a hundredth of a second's, it will do.
 constexpr double kDissectionFlops = 6000, kSmallFlops = 5e7;
-
-/// Operations of the factorization under this order.
-double predicted_flops(const Graph& graph, const Buffer<Index>& vertex_at) {
-  const Buffer<Index> parent = elimination_tree(graph, vertex_at, inverse_of(vertex_at));
-  const Buffer<Index> post = postorder(parent);
-  const Buffer<Index> rank = inverse_of(post);
-  Buffer<Index> ordered(post.size()), ordered_parent(post.size());
-  for (Offset k = 0; k < post.size(); ++k) {
-    ordered[k] = vertex_at[post[k]];
-    ordered_parent[k] = parent[post[k]] < 0 ? -1 : rank[parent[post[k]]];
-  }
-  return factor_flops(graph, ordered, column_counts(graph, ordered, inverse_of(ordered), ordered_parent));
-}
 
 struct PartOrder {
   Buffer<Index> vertex_at;

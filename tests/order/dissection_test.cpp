@@ -11,9 +11,7 @@
 #include "order/column_counts.hpp"
 #include "order/components.hpp"
 #include "order/element_grid.hpp"
-#include "order/elimination_tree.hpp"
 #include "order/metis_graph.hpp"
-#include "order/permutation.hpp"
 
 namespace stanchion {
 namespace {
@@ -65,20 +63,6 @@ TEST(Dissection, IsTheSameForAnyNumberOfThreads) {
   }
 }
 
-double operations(const Graph& graph, const Buffer<Index>& vertex_at) {
-  const Buffer<Index> position_of = inverse_of(vertex_at);
-  const Buffer<Index> parent = elimination_tree(graph, vertex_at, position_of);
-  const Buffer<Index> post = postorder(parent);
-  const Buffer<Index> rank = inverse_of(post);
-  Buffer<Index> in_postorder(post.size()), parent_in_postorder(post.size());
-  for (Offset k = 0; k < post.size(); ++k) {
-    in_postorder[k] = vertex_at[post[k]];
-    parent_in_postorder[k] = parent[post[k]] < 0 ? -1 : rank[parent[post[k]]];
-  }
-  return factor_flops(graph, in_postorder,
-                      column_counts(graph, in_postorder, inverse_of(in_postorder), parent_in_postorder));
-}
-
 TEST(Dissection, OfLatticesOfBarsTakesFarFewerOperationsThanMetis) {
   test::Random random(34);
   double ours = 0, of_metis = 0;
@@ -86,7 +70,7 @@ TEST(Dissection, OfLatticesOfBarsTakesFarFewerOperationsThanMetis) {
     const Graph lattice = test::bar_lattice(random, 20, 19, 18);
     const auto found = nested_dissection(lattice, 1);
     ASSERT_TRUE(found.ok());
-    ours += operations(lattice, *found);
+    ours += predicted_flops(lattice, *found);
     MetisGraph same(lattice);
     std::vector<idx_t> order(static_cast<std::size_t>(lattice.vertices)), inverse(order.size());
     ASSERT_EQ(METIS_NodeND(&same.vertices, same.start.data(), same.adjacency.data(), same.weight.data(),
@@ -94,7 +78,7 @@ TEST(Dissection, OfLatticesOfBarsTakesFarFewerOperationsThanMetis) {
               METIS_OK);
     Buffer<Index> vertex_at(lattice.vertices);
     std::copy(order.begin(), order.end(), vertex_at.begin());
-    of_metis += operations(lattice, vertex_at);
+    of_metis += predicted_flops(lattice, vertex_at);
   }
   EXPECT_LT(ours, 0.75 * of_metis);
 }
