@@ -408,15 +408,17 @@ class FrontEliminator {
                                  inside_.right(0, 0), inside_.right_stride(), accepted, end - begin, columns,
                                  begin - rest, 0, front_.matrix.column(begin, rest), leading(panel));
     };
-    // The first strip beyond may hold rows of the panel: it goes with them, for it writes to them too.
-    const Index strip = strip_begin<Scalar>(panel.full_end);
+    // A strip beyond may hold rows of the panel: it goes with them, for it writes to them too. Strips before
+    // it, where they are shorter than the longest, hold nothing but zeros.
+    const Index rows_before = panel.full_end - strip_begin<Scalar>(panel.full_end);
+    const Index shared = panel.full_end - rows_before % kernels().row_strip;
     const Index shared_end =
-        strip < panel.full_end ? std::min(strip + kernels().row_strip, layout_.order) : strip;
+        shared < panel.full_end ? std::min(shared + kernels().row_strip, layout_.order) : shared;
     for_each_piece(team_, pieces(panel), [&](Offset piece) {
       const PieceRows rows = rows_of(panel, below, piece);
       if (rows.inside) {
         update(rows, rest, panel.full_end);
-        if (pieces(panel) > 1) update({strip, shared_end, false}, strip, shared_end);
+        if (pieces(panel) > 1) update({shared, shared_end, false}, shared, shared_end);
         return;
       }
       update(rows, std::max(rows.begin, shared_end), rows.end);
