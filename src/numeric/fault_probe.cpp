@@ -37,27 +37,32 @@ Buffer<signed char> draw_signs(Index rows, std::uint64_t seed, double offset) {
 
 FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed, ThreadPool* pool) {
   const MatrixFamily& family = *matrix.family;
-  FaultProbe probe{draw_signs(family.rows, seed, matrix.offset), Buffer<double>(family.rows, 0.0),
-                   Buffer<double>(family.rows, 0.0)};
-  Buffer<TrackedSum> along_column(family.rows);
-  for_both_triangles(
-      pool, family.rows,
-      [&](Index j) {
-        TrackedSum sum;
-        for_column_entries(matrix, j, [&](Index i, double value) { sum.add(value * probe.sign[i]); });
-        along_column[j] = sum;
-      },
-      [&](Index j) {
-        for_column_entries(matrix, j, [&](Index i, double value) {
-          if (i == j) return;
-          probe.product[i] += value * probe.sign[j];
-          probe.product_error[i] += std::fabs(probe.product[i]);
-        });
+  FaultProbe probe{draw_signs(family.rows, seed, matrix.offset), Buffer<double>(family.rows),
+                   Buffer<double>(family.rows)};
+  const signed char* sign = probe.sign.data();
+  Buffer<TrackedSum> sums[2];  // of the rows, by the columns of each half
+  for_column_halves(pool, family.rows, family.column_start, [&](Index first, Index last, int half) {
+    sums[half] = Buffer<TrackedSum>(family.rows, TrackedSum{});
+    TrackedSum* of_row = sums[half].data();
+    for (Index j = first; j < last; ++j) {
+      double value_along = 0, sizes_along = 0;
+      const double own = sign[j];
+      for_column_entries(matrix, j, [&](Index i, double value) {
+        value_along += value * sign[i];
+        sizes_along += std::fabs(value);
+        if (i != j) of_row[i].add(value * own);
       });
+      // Any partial sum along the column is at most the sum of all sizes.
+      const Offset terms = family.column_start[Offset{j} + 1] - family.column_start[j];
+      of_row[j].sizes += static_cast<double>(terms) * sizes_along;
+      of_row[j].add(value_along);
+    }
+  });
   for (Index i = 0; i < family.rows; ++i) {
-    const TrackedSum& sum = along_column[i];
-    probe.product[i] += sum.value;
-    probe.product_error[i] = (probe.product_error[i] + std::fabs(probe.product[i]) + sum.sizes) * kUnit;
+    TrackedSum sum = sums[0][i];
+    sum.add(sums[1][i].value);
+    probe.product[i] = sum.value;
+    probe.product_error[i] = (sum.sizes + sums[1][i].sizes) * kUnit;
   }
   return probe;
 }

@@ -27,7 +27,7 @@ struct FaultProbe {
 Buffer<signed char> draw_signs(Index rows, std::uint64_t seed, double offset);
 
 /// Signs keyed by `seed` and the matrix's offset: the same bits on every machine. Throws std::bad_alloc.
-/// Cost: two passes over the entries, side by side where `pool` has two threads; the bits are the same.
+/// Cost: one pass over the entries, half of them by each of two threads of `pool`; the bits are the same.
 FaultProbe draw_fault_probe(const ShiftedMatrix& matrix, std::uint64_t seed, ThreadPool* pool = nullptr);
 
 }  // namespace stanchion

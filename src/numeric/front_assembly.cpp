@@ -4,6 +4,7 @@
 
 #include "dense/trailing_update.hpp"
 #include "numeric/front_worker.hpp"
+#include "sparse/product.hpp"
 
 namespace stanchion {
 namespace {
@@ -33,40 +34,60 @@ void scatter_columns(const Contribution<Scalar>& child, const Index* map, const 
   }
 }
 
+/// As for_column_entries(), with what each entry may be off by.
+template <class Use>
+void for_entries_with_errors(const ShiftedMatrix& matrix, Index column, const Use& use) {
+  const MatrixFamily& family = *matrix.family;
+  const bool exact = matrix.exact();
+  for (Offset k = family.column_start[column]; k < family.column_start[Offset{column} + 1]; ++k) {
+    const Index row = family.row[k];
+    double value = matrix.entry(k, row, column);
+    double error = exact ? ShiftedMatrix::kExactError : matrix.entry_error(k, row, column);
+    if (row == column && matrix.offset != 0) {
+      value -= matrix.offset;
+      error += kUnit * std::fabs(value);
+    }
+    use(row, value, error);
+  }
+}
+
 }  // namespace
 
 template <class Scalar>
 void FrontWorker<Scalar>::add_matrix_entries(const FrontRows& rows, const BlockLowerOf<Scalar>& matrix) {
-  const MatrixFamily& family = *run_->matrix.family;
+  const ShiftedMatrix& formed = run_->matrix;
   const Index first = run_->analysis.tree.first_column[rows.front];
-  const double offset = run_->matrix.offset;
-  const bool exact = run_->matrix.exact();
+  const Index* local = local_of_.data();
+  Scalar *addend_sums = addend_sums_.data(), *row_error = row_error_.data();
   for (Index j = 0; j < rows.own; ++j) {
     const Index position = first + j;
     // The pivots of a front and its rows below ascend, so these entries lie in the lower triangle.
     Scalar* column = matrix.column(j, j) - j;
     Scalar sizes = 0, errors = 0;  // of the column
-    for (Offset k = family.column_start[position]; k < family.column_start[Offset{position} + 1]; ++k) {
-      const Index row = family.row[k], i = local_of_[row];
-      double value = run_->matrix.entry(k, row, position);
-      double error = exact ? ShiftedMatrix::kExactError : run_->matrix.entry_error(k, row, position);
-      if (i == j && offset != 0) {
-        value -= offset;
-        error += kUnit * std::fabs(value);
-      }
-      if constexpr (!std::is_same_v<Scalar, double>) {
-        error += Rounding<Scalar>::kUnit * std::fabs(value) + Rounding<Scalar>::kLeast;
-      }
+    const auto add = [&](Index i, double value) {
       column[i] = static_cast<Scalar>(value);
-      const auto size = static_cast<Scalar>(std::fabs(value)), off = static_cast<Scalar>(error);
+      const auto size = static_cast<Scalar>(std::fabs(value));
       sizes += size;
-      errors += off;
-      if (i == j) continue;
-      addend_sums_[static_cast<std::size_t>(i)] += size;
-      row_error_[static_cast<std::size_t>(i)] += off;
+      if (i != j) addend_sums[i] += size;
+    };
+    if (sizeof(Scalar) == sizeof(double) && formed.exact()) {
+      // What underflows is in kExactError a row (count_pivots).
+      for_column_entries(formed, position, [&](Index row, double value) { add(local[row], value); });
+      if (formed.offset != 0) errors = static_cast<Scalar>(kUnit) * std::fabs(column[j]);
+    } else {
+      for_entries_with_errors(formed, position, [&](Index row, double value, double error) {
+        const Index i = local[row];
+        add(i, value);
+        if constexpr (!std::is_same_v<Scalar, double>) {
+          error += Rounding<Scalar>::kUnit * std::fabs(value) + Rounding<Scalar>::kLeast;
+        }
+        const auto off = static_cast<Scalar>(error);
+        errors += off;
+        if (i != j) row_error[i] += off;
+      });
     }
-    addend_sums_[static_cast<std::size_t>(j)] += sizes;
-    row_error_[static_cast<std::size_t>(j)] += errors;
+    addend_sums[j] += sizes;
+    row_error[j] += errors;
   }
 }
 

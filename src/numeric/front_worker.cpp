@@ -184,8 +184,10 @@ void FrontWorker<Scalar>::count_pivots(const FrontRows& rows, const EliminationR
   for (Index k = 0; k < eliminated; ++k) {
     largest_pivot = std::max(largest_pivot, std::fabs(diagonal_[static_cast<std::size_t>(k)]));
   }
-  // Underflow: every product or quotient may lose 2^-1075, seen through L and D of this front.
-  const double tiny = Rounding<Scalar>::kUnderflow * rows.order * (1 + largest_pivot);
+  // Underflow: every product or quotient may lose 2^-1075, seen through L and D of this front, and every
+  // entry of an exact matrix that is scaled kExactError.
+  const double tiny = Rounding<Scalar>::kUnderflow * rows.order * (1 + largest_pivot) +
+                      ShiftedMatrix::kExactError * run_->matrix.family->rows;
   for (Index k = 0; k < eliminated; ++k) {
     const auto i = static_cast<std::size_t>(k);
     const double bound = row_error_[i] + gamma * growth_[i] + tiny;

@@ -47,28 +47,21 @@ void for_column_ranges(ThreadPool* pool, Index columns, const Buffer<Offset>& co
     return static_cast<Index>(std::lower_bound(column_start.begin(), column_start.begin() + columns, wanted) -
                               column_start.begin());
   };
-  if (pieces == 1) return work(Index{0}, columns, 0);
-  pool->run(pieces,
-            [&](Offset piece, int) { work(bound(piece), bound(piece + 1), static_cast<int>(piece)); });
+  const auto run = [&](Offset piece, int) { work(bound(piece), bound(piece + 1), static_cast<int>(piece)); };
+  if (pool != nullptr && pieces > 1) return pool->run(pieces, run);
+  for (Offset piece = 0; piece < pieces; ++piece) run(piece, 0);
 }
 
 /// How many ranges pay: one a thread, and one alone below some hundred thousand entries.
 int column_ranges(ThreadPool* pool, Offset entries);
 
-/// A symmetric product is sums along the columns, `upper(j)`, and what the entries below the diagonal add to
-/// other rows, `lower(j)`: both for all columns in order, by two threads of `pool` if there are any.
-template <class Upper, class Lower>
-void for_both_triangles(ThreadPool* pool, Index columns, const Upper& upper, const Lower& lower) {
-  if (pool == nullptr || pool->size() == 1) {
-    for (Index j = 0; j < columns; ++j) {
-      upper(j);
-      lower(j);
-    }
-    return;
-  }
-  pool->run(2, [&](Offset half, int) {
-    for (Index j = 0; j < columns; ++j) half == 0 ? upper(j) : lower(j);
-  });
+/// work(first, last, half) for the two halves of the columns, of about as many entries: by two threads of
+/// `pool` if there are any. The halves are the same either way, and so are the bits of what is summed in
+/// each.
+template <class Work>
+void for_column_halves(ThreadPool* pool, Index columns, const Buffer<Offset>& column_start,
+                       const Work& work) {
+  for_column_ranges(pool, columns, column_start, 2, work);
 }
 
 /// S (sum_t coefficients[t] values[t]) S - offset I, with S = diag(2^scale_exponent).

@@ -35,21 +35,22 @@ void multiply_absolute(const ShiftedMatrix& matrix, std::span<const double> x, s
 
 double infinity_norm(const ShiftedMatrix& matrix, ThreadPool* pool) {
   const MatrixFamily& family = *matrix.family;
-  std::vector<double> lower(static_cast<std::size_t>(family.rows), 0.0), upper(lower.size());
-  for_both_triangles(
-      pool, family.rows,
-      [&](Index j) {
-        double sum = 0;
-        for_column_entries(matrix, j, [&](Index, double value) { sum += std::fabs(value); });
-        upper[static_cast<std::size_t>(j)] = sum;
-      },
-      [&](Index j) {
-        for_column_entries(matrix, j, [&](Index i, double value) {
-          if (i != j) lower[static_cast<std::size_t>(i)] += std::fabs(value);
-        });
+  std::vector<double> sums[2];  // of the rows, by the columns of each half
+  for_column_halves(pool, family.rows, family.column_start, [&](Index first, Index last, int half) {
+    std::vector<double>& row_sum = sums[half];
+    row_sum.assign(static_cast<std::size_t>(family.rows), 0.0);
+    for (Index j = first; j < last; ++j) {
+      double sum = 0;
+      for_column_entries(matrix, j, [&](Index i, double value) {
+        const double size = std::fabs(value);
+        sum += size;
+        if (i != j) row_sum[static_cast<std::size_t>(i)] += size;
       });
+      row_sum[static_cast<std::size_t>(j)] += sum;
+    }
+  });
   double largest = 0;
-  for (std::size_t i = 0; i < lower.size(); ++i) largest = std::max(largest, lower[i] + upper[i]);
+  for (std::size_t i = 0; i < sums[0].size(); ++i) largest = std::max(largest, sums[0][i] + sums[1][i]);
   return largest;
 }
 

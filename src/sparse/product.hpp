@@ -12,10 +12,20 @@ namespace stanchion {
 template <class Use>
 void for_column_entries(const ShiftedMatrix& matrix, Index column, const Use& use) {
   const MatrixFamily& family = *matrix.family;
-  for (Offset k = family.column_start[column]; k < family.column_start[Offset{column} + 1]; ++k) {
-    const Index row = family.row[k];
-    use(row, matrix.entry(k, row, column) - (row == column ? matrix.offset : 0.0));
-  }
+  const Offset begin = family.column_start[column], end = family.column_start[Offset{column} + 1];
+  // Held here, so that what `use` writes does not make them be read again.
+  const Index* rows = family.row.data();
+  const double offset = matrix.offset;
+  const auto all = [&](const auto& entry) {
+    for (Offset k = begin; k < end; ++k) {
+      const Index row = rows[k];
+      use(row, entry(k, row) - (row == column ? offset : 0.0));
+    }
+  };
+  if (family.values.size() > 1) return all([&](Offset k, Index row) { return matrix.entry(k, row, column); });
+  const double *values = family.values[0].data(), *scale = matrix.scale->data();
+  const double coefficient = matrix.coefficients[0], own = scale[column];
+  all([=](Offset k, Index row) { return coefficient * values[k] * (scale[row] * own); });
 }
 
 /// y = A x for the matrix as formed (scaled, offset included). Cost: one pass over the entries.
@@ -24,7 +34,7 @@ void multiply(const ShiftedMatrix& matrix, std::span<const double> x, std::span<
 /// y_i = sum_j |a_ij| |x_j|.
 void multiply_absolute(const ShiftedMatrix& matrix, std::span<const double> x, std::span<double> y);
 
-/// Largest row sum of |A|. Cost: one pass over the entries, half of it by each of two threads of `pool`.
+/// Largest row sum of |A|. Cost: one pass over the entries, half of them by each of two threads of `pool`.
 double infinity_norm(const ShiftedMatrix& matrix, ThreadPool* pool = nullptr);
 
 }  // namespace stanchion

@@ -2,19 +2,32 @@
 
 #include <algorithm>
 #include <atomic>
+#include <bit>
 #include <cmath>
+#include <cstdint>
 #include <vector>
 
 namespace stanchion {
 namespace {
 
-constexpr int kSweeps = 12;
+constexpr int kSweeps = 12, kMostExponent = 500;
 
-double magnitude(const MatrixFamily& family, std::span<const double> coefficients, Offset k) {
-  double sum = 0;
-  for (std::size_t t = 0; t < coefficients.size(); ++t) sum += coefficients[t] * family.values[t][k];
-  return std::fabs(sum);
-}
+/// Entries of a sum of members, by their place.
+class Sum {
+ public:
+  Sum(const MatrixFamily& family, std::span<const double> coefficients)
+      : family_(family), coefficients_(coefficients), first_(family.values[0].data()) {}
+  double operator()(Offset k) const {
+    double sum = coefficients_[0] * first_[k];
+    for (std::size_t t = 1; t < coefficients_.size(); ++t) sum += coefficients_[t] * family_.values[t][k];
+    return sum;
+  }
+
+ private:
+  const MatrixFamily& family_;
+  std::span<const double> coefficients_;
+  const double* first_;
+};
 
 /// log2 of a positive number, or a very small number for zero.
 double log2_or_least(double value) {
@@ -27,53 +40,48 @@ void for_columns(const MatrixFamily& family, ThreadPool* pool, const Work& work)
   for_column_ranges(pool, family.rows, family.column_start, column_ranges(pool, family.entries()), work);
 }
 
-std::vector<double> diagonal_of(const MatrixFamily& family, std::span<const double> coefficients,
-                                ThreadPool* pool) {
+std::vector<double> diagonal_of(const MatrixFamily& family, const Sum& entry, ThreadPool* pool) {
   std::vector<double> diagonal(static_cast<std::size_t>(family.rows), 0);
   for_columns(family, pool, [&](Index first, Index last, int) {
     for (Index j = first; j < last; ++j) {
       for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-        if (family.row[k] != j) continue;
-        double sum = 0;
-        for (std::size_t t = 0; t < coefficients.size(); ++t) sum += coefficients[t] * family.values[t][k];
-        diagonal[static_cast<std::size_t>(j)] = sum;
+        if (family.row[k] == j) diagonal[static_cast<std::size_t>(j)] = entry(k);
       }
     }
   });
   return diagonal;
 }
 
-bool diagonal_dominates(const MatrixFamily& family, std::span<const double> coefficients,
-                        const std::vector<double>& diagonal, ThreadPool* pool) {
+bool diagonal_dominates(const MatrixFamily& family, const Sum& entry, const std::vector<double>& diagonal,
+                        ThreadPool* pool) {
   std::vector<double> root(diagonal.size());
   for (std::size_t i = 0; i < root.size(); ++i) {
-    if (!(diagonal[i] > 0)) return false;
+    if (!(diagonal[i] > 0 && diagonal[i] < INFINITY)) return false;
     root[i] = std::sqrt(diagonal[i]);
   }
   std::atomic<bool> dominates{true};
   for_columns(family, pool, [&](Index first, Index last, int) {
     for (Index j = first; j < last && dominates; ++j) {
       const double own = root[static_cast<std::size_t>(j)] * 1.000001;
+      bool here = true;
       for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
         // Also false for what is not a number.
-        if (!(magnitude(family, coefficients, k) <= own * root[static_cast<std::size_t>(family.row[k])])) {
-          dominates = false;
-        }
+        here &= std::fabs(entry(k)) <= own * root[static_cast<std::size_t>(family.row[k])];
       }
+      if (!here) dominates = false;
     }
   });
   return dominates;
 }
 
 /// Maximum-norm equilibration; works on exponents so that nothing overflows.
-std::vector<double> equilibrated_exponents(const MatrixFamily& family, std::span<const double> coefficients,
-                                           ThreadPool* pool) {
+std::vector<double> equilibrated_exponents(const MatrixFamily& family, const Sum& entry, ThreadPool* pool) {
   const auto n = static_cast<std::size_t>(family.rows);
   std::vector<double> exponent(n, 0);
   Buffer<float> log_entry(family.entries());
   for_columns(family, pool, [&](Index first, Index last, int) {
     for (Offset k = family.column_start[first]; k < family.column_start[last]; ++k) {
-      log_entry[k] = static_cast<float>(log2_or_least(magnitude(family, coefficients, k)));
+      log_entry[k] = static_cast<float>(log2_or_least(std::fabs(entry(k))));
     }
   });
   std::vector<std::vector<double>> largest(static_cast<std::size_t>(column_ranges(pool, family.entries())));
@@ -100,12 +108,27 @@ std::vector<double> equilibrated_exponents(const MatrixFamily& family, std::span
   return exponent;
 }
 
+/// e for which value 4^e lies in [1/2, 2), for a positive value.
+int inverse_root_exponent(double value) {
+  int exponent = 0;
+  std::frexp(value, &exponent);
+  return -(exponent >> 1);
+}
+
+int whole(double exponent) {
+  return static_cast<int>(std::round(std::clamp(exponent, -1e6, 1e6)));
+}
+
+/// 2^e for |e| <= kMostExponent.
+double power_of_two(int e) {
+  return std::bit_cast<double>(static_cast<std::uint64_t>(1023 + e) << 52);
+}
+
 /// The first entry that the scaling leaves out of range, if there is one.
-Status range_checked(const MatrixFamily& family, std::span<const double> coefficients,
-                     const Buffer<double>& scale) {
+Status range_checked(const MatrixFamily& family, const Sum& entry, const Buffer<double>& scale) {
   for (Index j = 0; j < family.rows; ++j) {
     for (Offset k = family.column_start[j]; k < family.column_start[Offset{j} + 1]; ++k) {
-      const double scaled = magnitude(family, coefficients, k) * scale[family.row[k]] * scale[j];
+      const double scaled = std::fabs(entry(k)) * scale[family.row[k]] * scale[j];
       if (scaled <= 0x1p900) continue;
       return Status::bad_input(
           "scaling-range", "the entries span more orders of magnitude than doubles can hold",
@@ -120,27 +143,23 @@ Status range_checked(const MatrixFamily& family, std::span<const double> coeffic
 
 Result<Buffer<double>> power_of_two_scaling(const MatrixFamily& family, std::span<const double> coefficients,
                                             ThreadPool* pool) {
-  constexpr double kMostExponent = 500;
-  const std::vector<double> diagonal = diagonal_of(family, coefficients, pool);
-  const bool dominates = diagonal_dominates(family, coefficients, diagonal, pool);
+  const Sum entry(family, coefficients);
+  const std::vector<double> diagonal = diagonal_of(family, entry, pool);
+  const bool dominates = diagonal_dominates(family, entry, diagonal, pool);
   std::vector<double> exponent;
-  if (dominates) {
-    exponent.resize(diagonal.size());
-    for (std::size_t i = 0; i < diagonal.size(); ++i) exponent[i] = -std::log2(diagonal[i]) / 2;
-  } else {
-    exponent = equilibrated_exponents(family, coefficients, pool);
-  }
+  if (!dominates) exponent = equilibrated_exponents(family, entry, pool);
   Buffer<double> scale(family.rows);
   bool clamped = false;
   for (Index i = 0; i < family.rows; ++i) {
-    const double wanted = std::round(exponent[static_cast<std::size_t>(i)]);
-    const double e = std::clamp(wanted, -kMostExponent, kMostExponent);
+    const auto at = static_cast<std::size_t>(i);
+    const int wanted = dominates ? inverse_root_exponent(diagonal[at]) : whole(exponent[at]);
+    const int e = std::clamp(wanted, -kMostExponent, kMostExponent);
     clamped = clamped || e != wanted;
-    scale[i] = std::ldexp(1.0, static_cast<int>(e));
+    scale[i] = power_of_two(e);
   }
   // Below a dominating diagonal no scaled entry exceeds 2.1.
   if (!dominates || clamped) {
-    if (Status checked = range_checked(family, coefficients, scale); !checked.ok()) return checked;
+    if (Status checked = range_checked(family, entry, scale); !checked.ok()) return checked;
   }
   return scale;
 }

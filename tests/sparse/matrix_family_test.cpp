@@ -3,9 +3,12 @@
 #include <gtest/gtest.h>
 
 #include <algorithm>
+#include <array>
+#include <cmath>
 #include <numeric>
 #include <random>
 
+#include "sparse/product.hpp"
 #include "sparse/scaling.hpp"
 #include "support/generators.hpp"
 
@@ -110,6 +113,62 @@ TEST(Scaling, RefusesWhatIsNotANumberOrOutOfRange) {
     const auto scale = power_of_two_scaling(unite(members), coefficients);
     ASSERT_FALSE(scale.ok());
     EXPECT_EQ(scale.status().code(), "scaling-range");
+  }
+}
+
+TEST(Scaling, BringsDominatingDiagonalsNextToOne) {
+  SymmetricMatrix matrix = test::laplacian(60, 40, 1);
+  Offset k = 0;
+  for (Index j = 0; j < matrix.rows; ++j) {
+    for (; k < matrix.column_start[Offset{j} + 1]; ++k) {
+      // Powers of two and what lies beside them, from 2^-900 up.
+      const bool diagonal = matrix.row[k] == j;
+      matrix.value[k] = diagonal ? std::ldexp(1 + 0.5 * (j % 2), j % 1800 - 900) : 0.0;
+    }
+  }
+  const std::vector<const SymmetricMatrix*> members{&matrix};
+  const MatrixFamily family = unite(members);
+  const auto scale = power_of_two_scaling(family, std::array{1.0});
+  ASSERT_TRUE(scale.ok());
+  for (Index j = 0; j < family.rows; ++j) {
+    const double scaled = family.values[0][family.column_start[j]] * (*scale)[j] * (*scale)[j];
+    ASSERT_GE(scaled, 0.5) << j;
+    ASSERT_LT(scaled, 2) << j;
+  }
+}
+
+TEST(Scaling, RefusesADiagonalThatOverflows) {
+  SymmetricMatrix matrix = test::laplacian(3, 3, 1);
+  matrix.value[0] = 1e308;
+  const std::vector<const SymmetricMatrix*> members{&matrix};
+  const auto scale = power_of_two_scaling(unite(members), std::array{10.0});
+  ASSERT_FALSE(scale.ok());
+  EXPECT_EQ(scale.status().code(), "scaling-range");
+}
+
+TEST(InfinityNorm, IsTheLargestRowSumForAnyNumberOfThreads) {
+  const Case given;
+  const std::vector<const SymmetricMatrix*> members{&given.first, &given.second};
+  const MatrixFamily both = unite(members), one = family_of(given.first.clone());
+  Buffer<double> scale(both.rows);
+  for (Index i = 0; i < both.rows; ++i) scale[i] = std::ldexp(1.0, i % 5 - 2);
+  for (const ShiftedMatrix& matrix :
+       {ShiftedMatrix{&both, {1, -0.4}, &scale, 0.3}, ShiftedMatrix{&one, {-1}, &scale, 0.3}}) {
+    std::vector<double> row_sum(static_cast<std::size_t>(both.rows), 0.0);
+    for (Index j = 0; j < both.rows; ++j) {
+      for (Offset k = matrix.family->column_start[j]; k < matrix.family->column_start[Offset{j} + 1]; ++k) {
+        const Index i = matrix.family->row[k];
+        const double size = std::fabs(matrix.entry(k, i, j) - (i == j ? 0.3 : 0));
+        row_sum[static_cast<std::size_t>(i)] += size;
+        if (i != j) row_sum[static_cast<std::size_t>(j)] += size;
+      }
+    }
+    const double norm = infinity_norm(matrix), largest = *std::max_element(row_sum.begin(), row_sum.end());
+    EXPECT_NEAR(norm, largest, 1e-14 * largest);
+    for (const int threads : {2, 3}) {
+      ThreadPool pool(threads);
+      EXPECT_EQ(infinity_norm(matrix, &pool), norm);
+    }
   }
 }
 

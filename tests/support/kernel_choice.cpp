@@ -1,5 +1,5 @@
-// Runs a test program with the kernels of one instruction set, named by STANCHION_TEST_KERNELS: what the widest
-// set of this processor does right, another one may not.
+// Runs a test program with the kernels of one instruction set, named by STANCHION_TEST_KERNELS: what the
+// widest set of this processor does right, another one may not.
 #include <gtest/gtest.h>
 
 #include <cstdlib>
